@@ -1,0 +1,1 @@
+//! Single-dipole localisation of scalp EEG maps in spherical heads.
