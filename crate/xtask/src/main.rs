@@ -1,2 +1,82 @@
-//! The build tool.
-fn main() {}
+//! The build tool: `cargo xtask build | serve | test | bench`.
+
+mod bundle;
+mod dist;
+mod engine;
+mod lexer;
+mod notices;
+mod page;
+mod stamp;
+mod wasm;
+mod workspace;
+
+use anyhow::{Result, bail};
+use std::path::PathBuf;
+use std::process::ExitCode;
+use workspace::Workspace;
+
+const USAGE: &str = "\
+cargo xtask build               write target/dist: inward.html and engine/inward.mjs
+cargo xtask serve [--port N]    build, then serve the page on this machine only
+cargo xtask test [--install]    run every check; with --install fetch what they need first
+cargo xtask bench               build, then time the engine natively and in Node
+
+  --root DIR                    work on the clone in DIR instead of this one";
+
+fn main() -> ExitCode {
+    match run() {
+        Ok(()) => ExitCode::SUCCESS,
+        Err(error) => {
+            eprintln!("error: {error:#}");
+            ExitCode::FAILURE
+        }
+    }
+}
+
+fn run() -> Result<()> {
+    let mut arguments = Arguments(std::env::args().skip(1).collect());
+    let root = arguments.value("--root")?.map(PathBuf::from);
+    let command = arguments.command();
+    let workspace = Workspace::open(root)?;
+    match command.as_deref() {
+        Some("build") => {
+            arguments.finish()?;
+            dist::build(&workspace)?;
+        }
+        _ => bail!("what shall be done?\n\n{USAGE}"),
+    }
+    Ok(())
+}
+
+/// What stands on the command line and has not been read yet.
+struct Arguments(Vec<String>);
+
+impl Arguments {
+    fn command(&mut self) -> Option<String> {
+        (!self.0.is_empty()).then(|| self.0.remove(0))
+    }
+
+    fn flag(&mut self, name: &str) -> bool {
+        let before = self.0.len();
+        self.0.retain(|argument| argument != name);
+        self.0.len() < before
+    }
+
+    fn value(&mut self, name: &str) -> Result<Option<String>> {
+        let Some(at) = self.0.iter().position(|argument| argument == name) else {
+            return Ok(None);
+        };
+        if at + 1 == self.0.len() {
+            bail!("{name} needs a value");
+        }
+        self.0.remove(at);
+        Ok(Some(self.0.remove(at)))
+    }
+
+    fn finish(self) -> Result<()> {
+        match self.0.first() {
+            Some(argument) => bail!("unknown argument {argument}\n\n{USAGE}"),
+            None => Ok(()),
+        }
+    }
+}

@@ -1,0 +1,71 @@
+//! What is delivered: `inward.html` and `engine/inward.mjs`.
+
+use crate::bundle::Modules;
+use crate::engine::{gzip, module, page_script, worker_script};
+use crate::notices::notices;
+use crate::page::{LIMIT, Parts, page};
+use crate::wasm::{Compiled, compile};
+use crate::workspace::{Workspace, files, read};
+use anyhow::{Context, Result, bail};
+use base64::prelude::{BASE64_STANDARD, Engine};
+use std::path::Path;
+
+/// Everything that was made, kept for the scans.
+pub struct Dist {
+    /// The module and its glue.
+    pub compiled: Compiled,
+    /// The module as it is carried: compressed, base64.
+    pub carried: String,
+    /// The page.
+    pub page: String,
+    /// The page's script.
+    pub script: String,
+    /// The worker's script.
+    pub worker: String,
+    /// `inward.mjs`.
+    pub module: String,
+}
+
+/// Builds and writes it all, and tells the sizes.
+pub fn build(workspace: &Workspace) -> Result<Dist> {
+    let compiled = compile(workspace)?;
+    let www = workspace.root.join("www");
+    let modules = Modules::read(&www).context("in www")?;
+    let carried = BASE64_STANDARD.encode(gzip(&compiled.wasm)?);
+    let script = page_script(&modules.join("main.js")?);
+    let worker = worker_script(&modules.join("engine/worker.js")?, &compiled.glue);
+    let parts = Parts {
+        style: &styles(&www.join("style"))?,
+        script: &script,
+        worker: &worker,
+        wasm: &carried,
+        notices: &notices(workspace)?,
+    };
+    let page = page(&read(&www.join("index.html"))?, &parts)?;
+    let module = module(&modules.join("engine/module.js")?, &compiled.glue, &carried);
+    write(&workspace.dist.join("inward.html"), &page)?;
+    write(&workspace.dist.join("engine/inward.mjs"), &module)?;
+    println!("{:>9} bytes  engine, {} compressed", compiled.wasm.len(), carried.len() / 4 * 3);
+    println!("{:>9} bytes  target/dist/engine/inward.mjs", module.len());
+    println!("{:>9} bytes  target/dist/inward.html", page.len());
+    if page.len() > LIMIT {
+        bail!("inward.html is larger than {LIMIT} bytes");
+    }
+    Ok(Dist { compiled, carried, page, script, worker, module })
+}
+
+/// All style sheets in the order of their names.
+fn styles(folder: &Path) -> Result<String> {
+    let mut joined = String::new();
+    for path in files(folder)? {
+        if path.extension().is_some_and(|extension| extension == "css") {
+            joined += &read(&path)?;
+        }
+    }
+    Ok(joined)
+}
+
+fn write(path: &Path, text: &str) -> Result<()> {
+    std::fs::create_dir_all(path.parent().unwrap_or(path))?;
+    std::fs::write(path, text).with_context(|| path.display().to_string())
+}

@@ -1,0 +1,57 @@
+//! The engine as a module for scripts and other pages, and the glue both it and the worker carry.
+
+use crate::bundle::Joined;
+use flate2::{Compression, GzBuilder};
+use std::io::{Result, Write};
+
+/// The glue as a function: each call gives a fresh instance, which is how a trap is recovered from.
+fn wasm_glue(glue: &str) -> String {
+    format!("function wasmGlue() {{\n{}\nreturn wasm_bindgen;\n}}\n", glue.trim())
+}
+
+/// The page's script: classic, since a module script cannot run from a file.
+pub fn page_script(joined: &Joined) -> String {
+    format!("(() => {{\n\"use strict\";\n{}}})();", joined.code)
+}
+
+/// The worker's script: classic for the same reason.
+pub fn worker_script(joined: &Joined, glue: &str) -> String {
+    format!("(() => {{\n\"use strict\";\n{}{}}})();", wasm_glue(glue), joined.code)
+}
+
+/// `inward.mjs`: the entry's own exports, with the engine inside.
+pub fn module(joined: &Joined, glue: &str, wasm: &str) -> String {
+    let exports = joined.exports.join(", ");
+    let glue = wasm_glue(glue);
+    format!("const WASM_GZIP_BASE64 = \"{wasm}\";\n{glue}{}export {{ {exports} }};\n", joined.code)
+}
+
+/// Gzip without a date, so that equal bytes give equal bytes.
+pub fn gzip(bytes: &[u8]) -> Result<Vec<u8>> {
+    let mut encoder = GzBuilder::new().mtime(0).write(Vec::new(), Compression::best());
+    encoder.write_all(bytes)?;
+    encoder.finish()
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn the_module_exports_what_its_entry_does() {
+        let joined = Joined { code: "function openEngine() {}\n".into(), exports: vec!["openEngine".into()] };
+        let module = module(&joined, "let wasm_bindgen = 1;\n", "AA==");
+        assert!(
+            module.starts_with(
+                "const WASM_GZIP_BASE64 = \"AA==\";\nfunction wasmGlue() {\nlet wasm_bindgen = 1;\nreturn"
+            )
+        );
+        assert!(module.ends_with("function openEngine() {}\nexport { openEngine };\n"));
+    }
+
+    #[test]
+    fn compressed_bytes_carry_no_date() {
+        let bytes = gzip(b"map").unwrap();
+        assert_eq!(bytes[..8], [0x1f, 0x8b, 8, 0, 0, 0, 0, 0]);
+    }
+}
