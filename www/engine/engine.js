@@ -1,0 +1,128 @@
+/**
+ * The engine as scripts see it, over a wasm instance that may trap.
+ *
+ * Anything the engine throws on purpose carries a `code`. Anything else (a trap, an exhausted stack or memory)
+ * leaves the instance in an unknown state: it is dropped, and the next call gets a fresh one.
+ */
+
+/** @param {unknown} error @returns {error is Error & Fault} */
+function isDeliberate(error) {
+  return error instanceof Error && typeof (/** @type {any} */ (error).code) === "string";
+}
+
+/**
+ * @param {string} code
+ * @param {string} message
+ * @param {string} hint
+ * @param {string} [details]
+ */
+function engineError(code, message, hint, details) {
+  return Object.assign(new Error(message), { code, where: null, hint, details });
+}
+
+/** The caller may change its bytes afterwards; a study that reopens must not see that. @param {InwardContent} content */
+function keepContent(content) {
+  return content instanceof Uint8Array ? content.slice() : content;
+}
+
+/** @param {EngineRequest} request @returns {EngineRequest} */
+function keepRequest(request) {
+  const kept = { ...request };
+  if (kept.electrodes !== undefined) kept.electrodes = keepContent(kept.electrodes);
+  if (kept.maps !== undefined) kept.maps = keepContent(kept.maps);
+  if (kept.settings !== undefined) kept.settings = structuredClone(kept.settings);
+  return kept;
+}
+
+/**
+ * @param {() => Glue} instantiate gives a fresh, initialised instance
+ * @returns {Engine}
+ */
+export function makeEngine(instantiate) {
+  /** @type {Glue | null} */
+  let glue = null;
+
+  /**
+   * Runs one call into the engine. A panic's text goes to `console.error` before the trap; it is kept for the details.
+   * @template T
+   * @param {(glue: Glue) => T} job
+   * @returns {T}
+   */
+  function call(job) {
+    const speak = console.error;
+    let panic = "";
+    console.error = (...parts) => {
+      panic = parts.map(String).join(" ");
+    };
+    try {
+      glue ??= instantiate();
+      return job(glue);
+    } catch (error) {
+      if (isDeliberate(error)) throw error;
+      glue = null;
+      const stack = error instanceof Error ? `${error.name}: ${error.message}\n${error.stack ?? ""}` : String(error);
+      throw engineError(
+        "engine-trap",
+        "The engine stopped on an error of its own.",
+        "The next map gets a fresh engine. If this one fails again, please report it with the details below.",
+        panic === "" ? stack : `${panic}\n${stack}`,
+      );
+    } finally {
+      console.error = speak;
+    }
+  }
+
+  /** @param {EngineRequest} request @returns {Study} */
+  function open(request) {
+    const kept = keepRequest(request);
+    /** @type {Glue | null} */
+    let owner = null;
+    /** @type {GlueStudy | null} */
+    let study = null;
+    let closed = false;
+
+    /**
+     * Runs one call on the study, which opens itself again after its instance was dropped.
+     * @template T
+     * @param {(study: GlueStudy) => T} job
+     */
+    function use(job) {
+      if (closed) {
+        throw engineError("study-closed", "This study has been closed.", "Open it again with the same request.");
+      }
+      return call((current) => {
+        if (study === null || owner !== current) {
+          study = current.open(kept);
+          owner = current;
+        }
+        return job(study);
+      });
+    }
+
+    const facts = use((opened) => ({
+      head: opened.head(),
+      electrodes: opened.electrodes(),
+      notes: opened.notes(),
+      count: opened.count,
+    }));
+
+    return {
+      ...facts,
+      fit: (index) => use((opened) => opened.fit(index)),
+      assess: (index, what) => use((opened) => opened.assess(index, what)),
+      preamble: () => use((opened) => opened.preamble()),
+      sheet: (index) => use((opened) => opened.sheet(index)),
+      close() {
+        if (!closed && study !== null && owner === glue) study.free();
+        closed = true;
+        study = null;
+      },
+    };
+  }
+
+  return {
+    analyse: (request) => call((current) => current.analyse(request)),
+    open,
+    program: () => call((current) => current.program()),
+  };
+}

@@ -1,0 +1,14 @@
+/** The engine for scripts and other pages: `const engine = await openEngine()`. */
+
+import { makeEngine } from "./engine.js";
+import { compileWasm } from "./wasm.js";
+
+/** Everything after this one wait is synchronous. @returns {Promise<Engine>} */
+export async function openEngine() {
+  const module = await compileWasm(WASM_GZIP_BASE64);
+  return makeEngine(() => {
+    const glue = wasmGlue();
+    glue.initSync({ module });
+    return glue;
+  });
+}

@@ -1,0 +1,127 @@
+/**
+ * The page's side of the worker. Every message has an id; whoever waits under that id gets the answer, and an
+ * answer nobody waits for is dropped. Giving up terminates the worker and starts a fresh one from the same
+ * compiled module. A trap kills only the worker: the next message goes to a fresh one.
+ *
+ * @typedef {{ task: WorkerTask, resolve: (value: any) => void, reject: (fault: Fault) => void,
+ *             progress: ((step: FitProgress) => void) | undefined }} Waiting
+ */
+
+/** @param {string} code @param {string} [details] @returns {Fault} */
+function clientFault(code, details) {
+  return { code, message: "", where: null, hint: "", details };
+}
+
+/**
+ * @param {WebAssembly.Module} module
+ * @param {() => Worker} startWorker
+ */
+export function makeClient(module, startWorker) {
+  /** @type {Worker | null} */
+  let worker = null;
+  let nextId = 1;
+  let nextKey = 1;
+  /** @type {Map<number, Waiting>} */
+  const waiting = new Map();
+  /** @type {Map<number, EngineRequest>} */
+  const requests = new Map();
+  /** Keys whose request the present worker holds. @type {Set<number>} */
+  const told = new Set();
+
+  function stop() {
+    worker?.terminate();
+    worker = null;
+    told.clear();
+  }
+
+  /** @param {Worker} from @param {WorkerReply} reply */
+  function receive(from, reply) {
+    const one = waiting.get(reply.id);
+    if (from !== worker || one === undefined) return;
+    if ("progress" in reply) return one.progress?.(reply.progress);
+    waiting.delete(reply.id);
+    if ("value" in reply) return one.resolve(reply.value);
+    if (reply.fault.code === "engine-trap") restart();
+    one.reject(reply.fault);
+  }
+
+  /** The worker itself failed, not a task in it: nothing it was asked will be answered. @param {string} details */
+  function lose(details) {
+    const lost = [...waiting.values()];
+    waiting.clear();
+    stop();
+    for (const one of lost) one.reject(clientFault("worker-unavailable", details));
+  }
+
+  function ensureWorker() {
+    if (worker !== null) return worker;
+    const started = startWorker();
+    started.addEventListener("message", (event) => receive(started, event.data));
+    started.addEventListener("error", (event) => {
+      event.preventDefault();
+      if (started === worker) lose(event.message ?? "");
+    });
+    started.addEventListener("messageerror", () => {
+      if (started === worker) lose("a message could not be read");
+    });
+    started.postMessage({ module });
+    worker = started;
+    return started;
+  }
+
+  /** @param {number} id @param {WorkerTask} task */
+  function post(id, task) {
+    try {
+      const present = ensureWorker();
+      const request = "key" in task && !told.has(task.key) ? requests.get(task.key) : undefined;
+      if ("key" in task) told.add(task.key);
+      present.postMessage(request === undefined ? { ...task, id } : { ...task, id, request });
+    } catch (error) {
+      lose(String(error));
+    }
+  }
+
+  /** A fresh worker takes over what is still waited for. */
+  function restart() {
+    stop();
+    for (const [id, one] of waiting) post(id, one.task);
+  }
+
+  /**
+   * @param {WorkerTask} task
+   * @param {(step: FitProgress) => void} [progress]
+   * @returns {Promise<any>}
+   */
+  function ask(task, progress) {
+    return new Promise((resolve, reject) => {
+      const id = nextId++;
+      waiting.set(id, { task, resolve, reject, progress });
+      post(id, task);
+    });
+  }
+
+  return {
+    ask,
+
+    /** Names a request; it travels once, with the first task that carries the key. @param {EngineRequest} request */
+    name(request) {
+      const key = nextKey++;
+      requests.set(key, request);
+      return key;
+    },
+
+    /** @param {number} key */
+    forget(key) {
+      if (requests.delete(key) && worker !== null && told.delete(key)) ask({ kind: "close", key }).catch(() => {});
+    },
+
+    /** Gives up everything asked about one study; the rest is asked again. @param {number} key */
+    giveUp(key) {
+      const given = [...waiting].filter(([, one]) => "key" in one.task && one.task.key === key);
+      if (given.length === 0) return;
+      for (const [id] of given) waiting.delete(id);
+      restart();
+      for (const [, one] of given) one.reject(clientFault("given-up"));
+    },
+  };
+}

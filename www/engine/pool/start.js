@@ -1,0 +1,44 @@
+/** Starts the engine of the page from what the file carries: compiles once, hands the module to workers. */
+
+import { compileWasm } from "../wasm.js";
+import { makeClient } from "./client.js";
+
+/** @param {string} id */
+function carriedText(id) {
+  return document.getElementById(id)?.textContent ?? "";
+}
+
+/** @param {string} code @param {unknown} cause */
+function unavailable(code, cause) {
+  return Object.assign(new Error(""), { code, details: String(cause) });
+}
+
+/** The only policy of the page for script addresses: workers from blobs it has made itself. */
+function workerAddresses() {
+  const types = /** @type {any} */ (globalThis).trustedTypes;
+  const rules = {
+    /** @param {string} address */
+    createScriptURL(address) {
+      if (!address.startsWith("blob:")) throw new TypeError("workers come from blobs only");
+      return address;
+    },
+  };
+  return types === undefined ? rules : types.createPolicy("pool", rules);
+}
+
+export async function startClient() {
+  /** @type {WebAssembly.Module} */
+  let module;
+  try {
+    module = await compileWasm(carriedText("wasm"));
+  } catch (error) {
+    throw unavailable("wasm-unavailable", error);
+  }
+  try {
+    const script = new Blob([carriedText("worker")], { type: "text/javascript" });
+    const address = workerAddresses().createScriptURL(URL.createObjectURL(script));
+    return makeClient(module, () => new Worker(address));
+  } catch (error) {
+    throw unavailable("worker-unavailable", error);
+  }
+}

@@ -1,0 +1,135 @@
+/**
+ * The worker: one engine, the studies the page has named, and long runs cut into slices so that other
+ * messages are answered in between. Its first message is the compiled module.
+ */
+
+import { makeEngine } from "./engine.js";
+import { faultOf } from "./fault.js";
+import { reportHead, reportMap, reportTail } from "../export/json.js";
+
+const SLICE_MS = 50;
+
+/** @type {WebAssembly.Module | null} */
+let workerModule = null;
+
+const workerEngine = makeEngine(() => {
+  if (workerModule === null) throw new TypeError("the worker has no compiled module");
+  const glue = wasmGlue();
+  glue.initSync({ module: workerModule });
+  return glue;
+});
+
+/** Requests by the page's keys; a study is opened when first asked about. @type {Map<number, EngineRequest>} */
+const namedRequests = new Map();
+
+/** @type {Map<number, Study>} */
+const studies = new Map();
+
+/** @param {number} key */
+function studyOf(key) {
+  const known = studies.get(key);
+  if (known !== undefined) return known;
+  const request = namedRequests.get(key);
+  if (request === undefined) throw new TypeError(`study ${key} has no request`);
+  const study = workerEngine.open(request);
+  studies.set(key, study);
+  return study;
+}
+
+/** Lets waiting messages in before the next slice. @returns {Promise<void>} */
+function breathe() {
+  return new Promise((resolve) => {
+    const { port1, port2 } = new MessageChannel();
+    port1.onmessage = () => {
+      port1.close();
+      resolve();
+    };
+    port2.postMessage(null);
+  });
+}
+
+/** @param {ReportMap} map @returns {MapSummary} */
+function summaryOf(map) {
+  return "error" in map
+    ? { name: map.name, error: /** @type {UnfittedMap} */ (map).error }
+    : { name: map.name, rv: map.residual_variance };
+}
+
+/**
+ * Fits every map in turn and hands each to `take`. The first slice ends with the first fitted map, so that an
+ * answer can be shown at once.
+ * @param {number} id
+ * @param {number} key
+ * @param {Study} study
+ * @param {(map: ReportMap) => void} take
+ */
+async function eachMap(id, key, study, take) {
+  const total = study.count;
+  let fitted = 0;
+  let done = 0;
+  while (done < total) {
+    if (studies.get(key) !== study) throw new DOMException("the study was closed meanwhile", "AbortError");
+    const until = performance.now() + SLICE_MS;
+    /** @type {MapSummary[]} */
+    const maps = [];
+    let first = false;
+    while (done < total && !first && (maps.length === 0 || performance.now() < until)) {
+      const map = study.fit(done);
+      done += 1;
+      take(map);
+      const summary = summaryOf(map);
+      maps.push(summary);
+      if (!("error" in summary)) first = ++fitted === 1;
+    }
+    self.postMessage({ id, progress: { done, total, maps } });
+    await breathe();
+  }
+}
+
+/** @param {Sheet} sheet the rasters are handed over, not copied */
+function rastersOf(sheet) {
+  const { measured, projected, residual } = sheet.picture;
+  return [...new Set([measured.buffer, projected.buffer, residual.buffer])];
+}
+
+/** @param {WorkerMessage} message */
+async function answerTask(message) {
+  const { id } = message;
+  if ("request" in message && message.request !== undefined) namedRequests.set(message.key, message.request);
+  switch (message.kind) {
+    case "program":
+      return self.postMessage({ id, value: workerEngine.program() });
+    case "open": {
+      const study = studyOf(message.key);
+      return self.postMessage({ id, value: { preamble: study.preamble(), count: study.count } });
+    }
+    case "fitAll":
+      await eachMap(id, message.key, studyOf(message.key), () => {});
+      return self.postMessage({ id, value: null });
+    case "sheet": {
+      const sheet = studyOf(message.key).sheet(message.index);
+      return self.postMessage({ id, value: sheet }, { transfer: rastersOf(sheet) });
+    }
+    case "report": {
+      const study = studyOf(message.key);
+      const preamble = study.preamble();
+      const parts = [reportHead(preamble)];
+      await eachMap(id, message.key, study, (map) => parts.push(reportMap(map, parts.length === 1)));
+      parts.push(reportTail(preamble));
+      return self.postMessage({ id, value: new Blob(parts, { type: "application/json" }) });
+    }
+    case "close":
+      studies.get(message.key)?.close();
+      studies.delete(message.key);
+      namedRequests.delete(message.key);
+      return self.postMessage({ id, value: null });
+  }
+}
+
+self.addEventListener("message", (/** @type {MessageEvent} */ event) => {
+  if (event.data.module !== undefined) {
+    workerModule = event.data.module;
+    return;
+  }
+  answerTask(event.data).catch((error) => self.postMessage({ id: event.data.id, fault: faultOf(error) }));
+});

@@ -1,0 +1,53 @@
+/** The whole page takes drops; text pasted outside of a field is taken too. */
+
+import { inputOfFile, sortInputs } from "./files.js";
+
+/** @param {DataTransfer | null} transfer @returns {Promise<Input[]>} */
+async function inputsOfTransfer(transfer) {
+  if (transfer === null) return [];
+  const text = transfer.getData("text/plain");
+  if (transfer.files.length > 0) return Promise.all([...transfer.files].map(inputOfFile));
+  return text.trim() === "" ? [] : [{ name: "", content: text }];
+}
+
+/** @param {import("../session/session.js").Session} session @param {DataTransfer | null} transfer */
+async function takeTransfer(session, transfer) {
+  try {
+    const inputs = await inputsOfTransfer(transfer);
+    if (inputs.length > 0) session.put(sortInputs(inputs));
+  } catch (error) {
+    session.fail(error);
+  }
+}
+
+/** @param {EventTarget | null} target */
+function isField(target) {
+  return target instanceof HTMLElement && target.matches("textarea, input, select");
+}
+
+/**
+ * @param {import("../session/session.js").Session} session
+ * @param {HTMLElement} overlay shown while something is held over the page
+ */
+export function takeDropsAndPastes(session, overlay) {
+  /** @param {DragEvent} event */
+  const hover = (event) => {
+    event.preventDefault();
+    overlay.hidden = false;
+  };
+  document.addEventListener("dragenter", hover);
+  document.addEventListener("dragover", hover);
+  document.addEventListener("dragleave", (event) => {
+    if (event.relatedTarget === null) overlay.hidden = true;
+  });
+  document.addEventListener("drop", (event) => {
+    event.preventDefault();
+    overlay.hidden = true;
+    takeTransfer(session, event.dataTransfer);
+  });
+  document.addEventListener("paste", (event) => {
+    if (isField(event.target)) return;
+    event.preventDefault();
+    takeTransfer(session, event.clipboardData);
+  });
+}

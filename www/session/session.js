@@ -1,0 +1,184 @@
+/**
+ * The session: what was put in, what came out. Its functions are the only ones that change the state; views read
+ * and watch it.
+ */
+
+import { makeStore } from "./store.js";
+import { faultOf } from "../engine/fault.js";
+import { pageFault } from "../text/faults.js";
+
+/** @typedef {ReturnType<typeof import("../engine/pool/client.js").makeClient>} EngineClient */
+
+/** @typedef {ReturnType<typeof makeSession>} Session */
+
+export function makeSession() {
+  const store = makeStore(
+    /** @type {SessionState} */ ({
+      phase: "loading",
+      program: null,
+      inputs: { electrodes: null, maps: null },
+      settings: { mapUnit: "relative" },
+      answer: null,
+      failure: null,
+      progress: null,
+      stopped: false,
+    }),
+  );
+
+  /** @type {EngineClient | null} */
+  let client = null;
+  /** The study being opened, until it is answered or has failed. @type {number | null} */
+  let pending = null;
+
+  function restingPhase() {
+    if (client === null) return "loading";
+    return store.read().answer === null ? "ready" : "answered";
+  }
+
+  /** @param {unknown} error an error, or a fault as it came from the worker */
+  function fail(error) {
+    const fault = /** @type {Fault} */ (
+      error !== null && typeof error === "object" && !(error instanceof Error) && "code" in error ? error : faultOf(error)
+    );
+    if (fault.code !== "given-up") store.write({ phase: "failed", failure: pageFault(fault) });
+  }
+
+  function dropPending() {
+    if (pending === null || client === null) return;
+    client.giveUp(pending);
+    client.forget(pending);
+    pending = null;
+  }
+
+  /** Asks the engine about the present inputs; an older question nobody waits for any more is given up. */
+  async function ask() {
+    if (client === null) return;
+    const { inputs, settings, answer: before } = store.read();
+    dropPending();
+    if (inputs.maps === null) {
+      if (before !== null) client.forget(before.key);
+      store.write({ phase: "ready", answer: null, failure: null, progress: null, stopped: false });
+      return;
+    }
+    /** @type {EngineRequest} */
+    const request = { maps: inputs.maps.content, settings };
+    if (inputs.electrodes !== null) request.electrodes = inputs.electrodes.content;
+    const key = client.name(request);
+    pending = key;
+    store.write({ phase: "busy", failure: null, progress: null, stopped: false });
+    try {
+      const { preamble, count } = await client.ask({ kind: "open", key });
+      const names = { electrodes: inputs.electrodes?.name ?? null, maps: inputs.maps.name };
+      await fitMaps({ key, names, preamble, count, maps: [], chosen: 0, sheet: null });
+    } catch (fault) {
+      if (pending === key) {
+        pending = null;
+        client.forget(key);
+        fail(fault);
+      } else if (store.read().answer?.key === key) {
+        fail(fault);
+      }
+    }
+  }
+
+  /** @param {Answer} draft becomes the answer as soon as one of its maps is fitted */
+  async function fitMaps(draft) {
+    if (client === null) return;
+    const { key, maps } = draft;
+    /** @type {Promise<void> | null} */
+    let shown = null;
+    await client.ask({ kind: "fitAll", key }, (step) => {
+      maps.length = step.done - step.maps.length;
+      maps.push(...step.maps);
+      const progress = step.done < step.total ? { done: step.done, total: step.total } : null;
+      const answer = store.read().answer;
+      if (answer?.key === key) store.write({ answer: { ...answer }, progress });
+      else if (pending === key) store.write({ progress });
+      const fitted = maps.findIndex((map) => "rv" in map);
+      if (shown === null && fitted >= 0) shown = show({ ...draft, chosen: fitted });
+    });
+    if (shown !== null) return shown;
+    const first = maps[0];
+    if (first !== undefined && "error" in first) throw first.error;
+  }
+
+  /** @param {Answer} draft */
+  async function show(draft) {
+    if (client === null) return;
+    const sheet = await client.ask({ kind: "sheet", key: draft.key, index: draft.chosen });
+    if (pending !== draft.key) return;
+    pending = null;
+    const before = store.read().answer;
+    if (before !== null) client.forget(before.key);
+    store.write({ phase: "answered", answer: { ...draft, sheet } });
+  }
+
+  return {
+    read: store.read,
+    watch: store.watch,
+    fail,
+
+    /** The engine has answered its first call. @param {EngineClient} ready @param {Program} program */
+    engineReady(ready, program) {
+      client = ready;
+      store.write({ phase: store.read().phase === "failed" ? "failed" : "ready", program });
+      if (store.read().inputs.maps !== null) ask();
+    },
+
+    /** One or both inputs at once; null takes an input away. @param {Partial<Record<InputKind, Input | null>>} inputs */
+    put(inputs) {
+      store.write({ inputs: { ...store.read().inputs, ...inputs } });
+      if ("maps" in inputs || store.read().inputs.maps !== null) ask();
+    },
+
+    /** @param {EngineSettings} settings */
+    set(settings) {
+      store.write({ settings: { ...store.read().settings, ...settings } });
+      if (store.read().inputs.maps !== null) ask();
+    },
+
+    /** Shows another map of the table. @param {number} index */
+    async choose(index) {
+      const { answer } = store.read();
+      const map = answer?.maps[index];
+      if (client === null || answer === null || map === undefined) return;
+      if ("error" in map) {
+        store.write({ answer: { ...answer, chosen: index, sheet: null } });
+        return;
+      }
+      store.write({ answer: { ...answer, chosen: index } });
+      try {
+        const sheet = await client.ask({ kind: "sheet", key: answer.key, index });
+        const now = store.read().answer;
+        if (now?.key === answer.key && now.chosen === index) store.write({ answer: { ...now, sheet } });
+      } catch (fault) {
+        if (store.read().answer?.key === answer.key) fail(fault);
+      }
+    },
+
+    /** The whole report of the present answer. @returns {Promise<Blob | null>} */
+    async report() {
+      const { answer } = store.read();
+      if (client === null || answer === null) return null;
+      try {
+        return await client.ask({ kind: "report", key: answer.key });
+      } catch (fault) {
+        fail(fault);
+        return null;
+      }
+    },
+
+    /** Gives up what the engine is at. */
+    cancel() {
+      const { answer } = store.read();
+      if (pending !== null) dropPending();
+      else if (answer !== null) client?.giveUp(answer.key);
+      store.write({ phase: restingPhase(), progress: null, stopped: true });
+    },
+
+    /** Puts the failure away; the previous answer stays. */
+    dismiss() {
+      store.write({ phase: restingPhase(), failure: null });
+    },
+  };
+}

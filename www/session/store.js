@@ -1,0 +1,38 @@
+/** A value that can be watched. Listeners run after the change, in the order they came. */
+
+/**
+ * @template {object} T
+ * @param {T} initial
+ */
+export function makeStore(initial) {
+  let state = initial;
+  /** @type {Set<(state: T) => void>} */
+  const listeners = new Set();
+
+  return {
+    read: () => state,
+
+    /** @param {Partial<T>} patch */
+    write(patch) {
+      state = { ...state, ...patch };
+      for (const listener of listeners) listener(state);
+    },
+
+    /**
+     * Calls `render` now and whenever the picked part is another one.
+     * @template P
+     * @param {(state: T) => P} pick
+     * @param {(part: P, state: T) => void} render
+     */
+    watch(pick, render) {
+      let part = pick(state);
+      render(part, state);
+      listeners.add((next) => {
+        const now = pick(next);
+        if (Object.is(now, part)) return;
+        part = now;
+        render(now, next);
+      });
+    },
+  };
+}

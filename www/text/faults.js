@@ -1,0 +1,61 @@
+/** Sentences for what can go wrong in the page itself. The engine's own errors bring theirs along. */
+
+/** @type {Record<string, { message: string, hint: string }>} */
+const PAGE_FAULTS = {
+  "wasm-unavailable": {
+    message: "This browser does not let the page run WebAssembly, which the computation needs.",
+    hint: "Open the file in a current browser, or switch off a lock-down mode for it.",
+  },
+  "worker-unavailable": {
+    message: "This browser does not let the page start a worker, where the computation runs.",
+    hint: "Open the file in a current browser, outside of a frame that forbids scripts.",
+  },
+  "file-unreadable": {
+    message: "The browser could not read that file.",
+    hint: "It may have been moved or be too large. Pick it again, or paste its content.",
+  },
+  "inputs-same-kind": {
+    message: "Both files read like the same kind of table.",
+    hint: "Drop one map table and one electrode table, or pick each by its own button.",
+  },
+  "page-error": {
+    message: "The page stopped on an error of its own.",
+    hint: "Reload it and try again. If it happens again, please report it with the details below.",
+  },
+};
+
+/** Gives a fault without words those of its code. @param {Fault} fault @returns {Fault} */
+export function pageFault(fault) {
+  if (fault.message !== "") return fault;
+  const words = PAGE_FAULTS[fault.code] ?? PAGE_FAULTS["page-error"];
+  return { ...fault, ...words };
+}
+
+const PLACE_WORDS = /** @type {const} */ ({ file: "", line: "line", column: "column", byte: "byte", label: "electrode", map: "map" });
+
+/** A place in words: "map table, line 3, column 2". @param {Place | null} place */
+export function placeText(place) {
+  if (place === null) return "";
+  const parts = [];
+  if (place.input === "maps") parts.push("map table");
+  else if (place.input === "electrodes") parts.push("electrode table");
+  else if (place.input) parts.push(place.input);
+  for (const [key, word] of Object.entries(PLACE_WORDS)) {
+    const value = place[/** @type {keyof typeof PLACE_WORDS} */ (key)];
+    if (value !== null && value !== undefined) parts.push(`${word} ${value}`.trim());
+  }
+  return parts.join(", ");
+}
+
+/** What to copy into a report of the failure. @param {Fault} fault @param {Program | null} program */
+export function detailsText(fault, program) {
+  const lines = [
+    `code: ${fault.code}`,
+    `message: ${fault.message}`,
+    `where: ${placeText(fault.where) || "-"}`,
+    `program: ${program === null ? "not started" : `${program.name} ${program.version} (${program.build})`}`,
+    `browser: ${navigator.userAgent}`,
+  ];
+  if (fault.details) lines.push("", fault.details.trim());
+  return lines.join("\n");
+}

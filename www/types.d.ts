@@ -1,0 +1,233 @@
+/*
+ * Shapes that cross a border: the engine's glue, the report (the same keys as the JSON download),
+ * the sheet the page lays out, and the messages between page and worker.
+ */
+
+/** Text or raw bytes of one input, as the engine takes them. */
+type InwardContent = string | Uint8Array;
+
+type MapUnit = "uV" | "V" | "relative";
+
+/** Every setting is optional; the engine refuses what it does not know. */
+interface EngineSettings {
+  mapUnit?: MapUnit;
+  exclude?: string[];
+  head?: object;
+  assess?: string[];
+}
+
+interface EngineRequest {
+  electrodes?: InwardContent;
+  maps: InwardContent;
+  settings?: EngineSettings;
+}
+
+interface Program {
+  name: string;
+  version: string;
+  build: string;
+}
+
+/** Where in which input something was found. */
+interface Place {
+  input: string | null;
+  file: string | null;
+  line: number | null;
+  column: number | null;
+  byte: number | null;
+  label: string | null;
+  map: string | null;
+}
+
+/** An error in the form it crosses borders with; `details` is a panic's text or a stack. */
+interface Fault {
+  code: string;
+  message: string;
+  where: Place | null;
+  hint: string;
+  details?: string;
+}
+
+interface ReportNote {
+  code: string;
+  severity: "info" | "warning";
+  message: string;
+  where: Place | null;
+  values: object | null;
+}
+
+interface FittedMap {
+  name: string;
+  residual_variance: number;
+  [key: string]: unknown;
+}
+
+interface UnfittedMap {
+  name: string;
+  error: Fault;
+}
+
+type ReportMap = FittedMap | UnfittedMap;
+
+interface InwardReport {
+  format: "inward-report";
+  version: number;
+  program: Program;
+  inputs: { name: string; sha256: string }[];
+  settings: EngineSettings;
+  head: object;
+  electrodes: { label: string; position_mm: number[]; used: boolean }[];
+  maps: ReportMap[];
+  notes: ReportNote[];
+}
+
+/** One row of the numbers table; the engine has made text of every number. */
+interface SheetRow {
+  code: string;
+  label: string;
+  value: string;
+  unit: string;
+  meaning: string;
+}
+
+interface ContourLine {
+  level: number;
+  points: Float32Array;
+}
+
+interface DiscElectrode {
+  label: string;
+  x: number;
+  y: number;
+  used: boolean;
+}
+
+type MapRole = "measured" | "projected" | "residual";
+
+/** What is painted, in unit coordinates: x to the right, y to the front. */
+interface Picture {
+  size: number;
+  measured: Float32Array;
+  projected: Float32Array;
+  residual: Float32Array;
+  limit: number;
+  stretch: number;
+  levels: Float64Array;
+  contours: Record<MapRole, ContourLine[]>;
+  outline: Float32Array;
+  rings: { degrees: number; radius: number }[];
+  electrodes: DiscElectrode[];
+  extremes: Record<MapRole, { max: number; min: number }>;
+  dipole: { x: number; y: number; dx: number; dy: number };
+}
+
+interface Sheet {
+  sentence: string;
+  rows: SheetRow[];
+  alt: Record<MapRole, string>;
+  picture: Picture;
+}
+
+/** A study as the glue exports it. */
+interface GlueStudy {
+  readonly count: number;
+  head(): object;
+  electrodes(): object[];
+  notes(): ReportNote[];
+  preamble(): InwardReport;
+  fit(index: number): ReportMap;
+  assess(index: number, what: string[]): object;
+  sheet(index: number): Sheet;
+  free(): void;
+}
+
+interface Glue {
+  initSync(source: { module: WebAssembly.Module }): unknown;
+  analyse(request: EngineRequest): InwardReport;
+  open(request: EngineRequest): GlueStudy;
+  program(): Program;
+}
+
+/** The glue's text is put before the worker and the module by the build; each call gives a fresh instance. */
+declare function wasmGlue(): Glue;
+
+/** The engine itself, gzip and base64; put before the module by the build. */
+declare const WASM_GZIP_BASE64: string;
+
+/** A study as scripts see it; the last three are what the page's worker uses. */
+interface Study {
+  readonly head: object;
+  readonly electrodes: object[];
+  readonly notes: ReportNote[];
+  readonly count: number;
+  fit(index: number): ReportMap;
+  assess(index: number, what: string[]): object;
+  preamble(): InwardReport;
+  sheet(index: number): Sheet;
+  close(): void;
+}
+
+interface Engine {
+  analyse(request: EngineRequest): InwardReport;
+  open(request: EngineRequest): Study;
+  program(): Program;
+}
+
+/** One line of the list of maps: enough to choose by. */
+type MapSummary = { name: string; rv: number } | { name: string; error: Fault };
+
+interface FitProgress {
+  done: number;
+  total: number;
+  maps: MapSummary[];
+}
+
+/** Messages to the worker. `request` rides along with the first task that carries the study's key. */
+type WorkerTask =
+  | { kind: "program" }
+  | { kind: "open"; key: number; request?: EngineRequest }
+  | { kind: "fitAll"; key: number; request?: EngineRequest }
+  | { kind: "sheet"; key: number; request?: EngineRequest; index: number }
+  | { kind: "report"; key: number; request?: EngineRequest }
+  | { kind: "close"; key: number };
+
+type WorkerMessage = WorkerTask & { id: number };
+
+type WorkerReply =
+  | { id: number; value: unknown }
+  | { id: number; progress: FitProgress }
+  | { id: number; fault: Fault };
+
+/** One input as the session holds it. */
+interface Input {
+  /** The file's name, or empty when pasted or typed. */
+  name: string;
+  content: InwardContent;
+}
+
+type InputKind = "electrodes" | "maps";
+
+type Phase = "loading" | "ready" | "busy" | "answered" | "failed";
+
+interface Answer {
+  key: number;
+  names: Record<InputKind, string | null>;
+  preamble: InwardReport;
+  count: number;
+  maps: MapSummary[];
+  chosen: number;
+  /** Null while the chosen map could not be fitted. */
+  sheet: Sheet | null;
+}
+
+interface SessionState {
+  phase: Phase;
+  program: Program | null;
+  inputs: Record<InputKind, Input | null>;
+  settings: EngineSettings;
+  answer: Answer | null;
+  failure: Fault | null;
+  progress: { done: number; total: number } | null;
+  /** Maps still to be fitted were given up. */
+  stopped: boolean;
+}

@@ -1,0 +1,35 @@
+/** The answer in a sentence, first and largest, and the frame around everything that belongs to it. */
+
+import { make, need } from "./element.js";
+
+/** The first sentence is the answer; what follows explains it and is set smaller. @param {string} text */
+function splitSentence(text) {
+  const end = text.search(/\.\s+\p{Lu}/u);
+  return end < 0 ? [text] : [text.slice(0, end + 1), text.slice(end + 1)];
+}
+
+/** @param {import("../session/session.js").Session} session */
+export function showAnswer(session) {
+  const sentence = need("sentence", HTMLElement);
+  const hint = need("sentence-hint", HTMLElement);
+
+  session.watch(
+    (state) => state.answer === null && state.phase !== "failed",
+    (empty) => {
+      need("empty", HTMLElement).hidden = !empty;
+    },
+  );
+  session.watch(
+    (state) => state.answer?.sheet,
+    (sheet, { answer }) => {
+      need("answer", HTMLElement).hidden = answer === null;
+      need("fitted", HTMLElement).hidden = !sheet;
+      if (answer === null) return;
+      const map = answer.maps[answer.chosen];
+      const text = sheet?.sentence ?? (map !== undefined && "error" in map ? `${map.name}: ${map.error.message}` : "");
+      sentence.replaceChildren(...splitSentence(text).map((part, at) => make("span", part, { class: at === 0 ? "first" : "rest" })));
+      hint.textContent = !sheet && map !== undefined && "error" in map ? map.error.hint : "";
+      hint.hidden = hint.textContent === "";
+    },
+  );
+}

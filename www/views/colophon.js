@@ -1,0 +1,18 @@
+/** The foot of the page: which program this is, and the licences of what is built in. */
+
+import { need } from "./element.js";
+
+/** @param {import("../session/session.js").Session} session */
+export function showColophon(session) {
+  session.watch(
+    (state) => state.program,
+    (program) => {
+      need("program", HTMLElement).textContent = program === null ? "" : `${program.name} ${program.version} (${program.build})`;
+    },
+  );
+  const notices = need("notices", HTMLDetailsElement);
+  notices.addEventListener("toggle", () => {
+    const carried = document.querySelector("script#notices-text, script#notices");
+    need("notices-shown", HTMLElement).textContent = carried?.textContent?.trim() ?? "";
+  });
+}

@@ -1,0 +1,32 @@
+/** What went wrong: a sentence, a next step, and details to copy. */
+
+import { copyText } from "../export/out.js";
+import { detailsText, placeText } from "../text/faults.js";
+import { confirmOn } from "./confirm.js";
+import { need } from "./element.js";
+
+/** @param {import("../session/session.js").Session} session */
+export function showFailure(session) {
+  const panel = need("failure", HTMLElement);
+  const details = need("failure-details", HTMLElement);
+  const copy = need("copy-details", HTMLButtonElement);
+  copy.addEventListener("click", async () => confirmOn(copy, await copyText(details.textContent ?? "")));
+  need("failure-dismiss", HTMLButtonElement).addEventListener("click", () => {
+    session.dismiss();
+    need("main", HTMLElement).focus();
+  });
+
+  session.watch(
+    (state) => state.failure,
+    (failure, state) => {
+      panel.hidden = failure === null;
+      const where = placeText(failure?.where ?? null);
+      need("failure-message", HTMLElement).textContent = failure?.message ?? "";
+      need("failure-where", HTMLElement).textContent = where;
+      need("failure-where", HTMLElement).hidden = where === "";
+      need("failure-hint", HTMLElement).textContent = failure?.hint ?? "";
+      need("failure-kept", HTMLElement).hidden = state.answer === null;
+      details.textContent = failure === null ? "" : detailsText(failure, state.program);
+    },
+  );
+}

@@ -1,0 +1,54 @@
+/** measured − one dipole = left over, on one scale. Painted again whenever size, theme or medium change. */
+
+import { paintBar } from "../draw/bar.js";
+import { surroundingsOf } from "../draw/canvas.js";
+import { paintDisc } from "../draw/disc.js";
+import { limitText, stretchText } from "../text/figures.js";
+import { unitText, word } from "../text/words.js";
+import { need } from "./element.js";
+
+/** @type {MapRole[]} */
+const ROLES = ["measured", "projected", "residual"];
+
+/** @param {import("../session/session.js").Session} session */
+export function showMaps(session) {
+  const discs = ROLES.map((role) => ({ role, canvas: need(`map-${role}`, HTMLCanvasElement) }));
+  const bar = need("scale-bar", HTMLCanvasElement);
+  const words = { front: word("map.front"), left: word("map.left"), right: word("map.right"), above: word("map.above") };
+  let printing = false;
+
+  function paint() {
+    const picture = session.read().answer?.sheet?.picture;
+    if (picture === undefined) return;
+    for (const { role, canvas } of discs) {
+      const stretched = role === "residual" && picture.stretch !== 1 ? stretchText(picture.stretch) : "";
+      paintDisc(canvas, { picture, role, dipole: role === "projected", stretched, words }, surroundingsOf(canvas, printing));
+    }
+    paintBar(bar, picture, surroundingsOf(bar, printing));
+  }
+
+  session.watch(
+    (state) => state.answer?.sheet,
+    (sheet, state) => {
+      if (!sheet) return;
+      const { picture, alt } = sheet;
+      for (const { role, canvas } of discs) canvas.setAttribute("aria-label", alt[role]);
+      const unit = unitText(state.answer?.preamble.settings.mapUnit ?? "relative");
+      need("scale-low", HTMLElement).textContent = limitText(-picture.limit);
+      need("scale-high", HTMLElement).textContent = `${limitText(picture.limit)} ${unit}`;
+      need("stretch", HTMLElement).textContent = picture.stretch === 1 ? "" : stretchText(picture.stretch);
+      paint();
+    },
+  );
+
+  new ResizeObserver(paint).observe(need("fitted", HTMLElement));
+  for (const query of ["(prefers-color-scheme: dark)", "(forced-colors: active)", `(resolution: ${devicePixelRatio}dppx)`]) {
+    matchMedia(query).addEventListener("change", paint);
+  }
+  for (const [name, now] of /** @type {const} */ ([["beforeprint", true], ["afterprint", false]])) {
+    addEventListener(name, () => {
+      printing = now;
+      paint();
+    });
+  }
+}

@@ -1,0 +1,24 @@
+/** What the engine assumed or noticed while it read the inputs. */
+
+import { word } from "../text/words.js";
+import { placeText } from "../text/faults.js";
+import { make, need } from "./element.js";
+
+/** @param {ReportNote} note */
+function noteElement(note) {
+  const element = make("li", "", { class: `note-${note.severity}` });
+  if (note.severity === "warning") element.append(make("strong", `${word("note.warning")}: `));
+  element.append(note.message);
+  const where = placeText(note.where);
+  if (where !== "") element.append(make("span", ` (${where})`, { class: "small" }));
+  return element;
+}
+
+/** @param {import("../session/session.js").Session} session */
+export function showNotes(session) {
+  const list = need("notes", HTMLUListElement);
+  session.watch(
+    (state) => state.answer?.preamble.notes,
+    (notes) => list.replaceChildren(...(notes?.length ? notes.map(noteElement) : [make("li", word("notes.none"))])),
+  );
+}

@@ -1,0 +1,43 @@
+/** The numbers, each with its unit and a line on its meaning; a copy of the table and the whole report. */
+
+import { copyText, saveBlob } from "../export/out.js";
+import { tableText } from "../export/table.js";
+import { word } from "../text/words.js";
+import { confirmOn } from "./confirm.js";
+import { make, need } from "./element.js";
+
+const REPORT_NAME = "inward-report.json";
+
+/** @param {SheetRow} row */
+function rowElement(row) {
+  const element = make("tr", "");
+  const value = make("td", "", { class: "value" });
+  value.append(row.value, make("span", row.unit === "" ? "" : `\u00a0${row.unit}`, { class: "unit-of" }));
+  element.append(make("th", row.label, { scope: "row" }), value, make("td", row.meaning, { class: "meaning small" }));
+  return element;
+}
+
+/** @param {import("../session/session.js").Session} session */
+export function showNumbers(session) {
+  const body = need("numbers", HTMLTableElement).tBodies[0];
+  const copy = need("copy-table", HTMLButtonElement);
+  const download = need("download-json", HTMLButtonElement);
+
+  copy.addEventListener("click", async () => {
+    const rows = session.read().answer?.sheet?.rows;
+    if (rows === undefined) return;
+    const heading = [word("numbers.quantity"), word("numbers.value"), word("numbers.unit")];
+    confirmOn(copy, await copyText(tableText(rows, heading)));
+  });
+  download.addEventListener("click", async () => {
+    download.disabled = true;
+    const report = await session.report();
+    if (report !== null) saveBlob(report, REPORT_NAME);
+    download.disabled = false;
+  });
+
+  session.watch(
+    (state) => state.answer?.sheet,
+    (sheet) => body.replaceChildren(...(sheet?.rows ?? []).map(rowElement)),
+  );
+}

@@ -1,0 +1,44 @@
+/** One line on what the page is at, with progress and a way to stop. */
+
+import { progressText, word } from "../text/words.js";
+import { need } from "./element.js";
+
+/** @param {SessionState} state */
+function statusText(state) {
+  if (state.progress !== null) return progressText(state.progress.done, state.progress.total);
+  if (state.stopped) return word("state.stopped");
+  if (state.phase === "ready" && state.inputs.electrodes !== null) return word("state.waiting");
+  return word(`state.${state.phase}`);
+}
+
+/** @param {import("../session/session.js").Session} session */
+export function showStatus(session) {
+  const status = need("status", HTMLElement);
+  const progress = need("progress", HTMLProgressElement);
+  const cancel = need("cancel", HTMLButtonElement);
+  cancel.addEventListener("click", () => {
+    session.cancel();
+    need("main", HTMLElement).focus();
+  });
+
+  session.watch(
+    (state) => state.phase,
+    (phase) => {
+      document.documentElement.dataset.state = phase;
+    },
+  );
+  session.watch(
+    (state) => state,
+    (_, state) => {
+      const working = state.phase === "busy" || state.progress !== null;
+      const text = statusText(state);
+      // Counts change many times a second; a screen reader hears of the beginning and the end.
+      status.setAttribute("aria-live", state.progress === null ? "polite" : "off");
+      if (status.textContent !== text) status.textContent = text;
+      cancel.hidden = !working;
+      progress.hidden = !working;
+      if (state.progress === null) progress.removeAttribute("value");
+      else progress.value = state.progress.done / state.progress.total;
+    },
+  );
+}
