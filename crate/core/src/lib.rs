@@ -1,1 +1,34 @@
 //! Single-dipole localisation of scalp EEG maps in spherical heads.
+//!
+//! The science of Inward as a pure library: no files, no clock, no hidden randomness. A map goes one way:
+//! bytes → [`read`] → [`placement`] → [`fit`] (which asks [`forward`]) → [`assess`] → [`report`] and [`scene`].
+//! A module imports only from those listed above it here. [`analyse()`] and [`Study`] do the whole way in one call.
+//!
+//! Every result is the same, bit for bit, natively and in WebAssembly: transcendental functions come from `libm`,
+//! sums run in a written order, and no instruction is chosen at run time.
+
+pub mod finding;
+pub mod math;
+
+pub mod electrode;
+pub mod head;
+pub mod map;
+
+pub mod read;
+
+pub mod placement;
+
+pub mod forward;
+
+pub mod fit;
+
+pub mod assess;
+
+pub mod scene;
+
+pub mod report;
+
+mod analyse;
+
+pub use finding::{Code, Error, Finding, Place};
+pub use math::Vec3;

@@ -1,0 +1,227 @@
+//! What the program has to say about its input: notes about what it assumed, and errors.
+//!
+//! A [`Finding`] holds a code, a place and values; its words are made in [`crate::report`], the only place where
+//! numbers become text.
+
+/// Where in the input a finding points to; lines, columns and bytes count from 1.
+#[derive(Clone, Debug, Default, PartialEq, serde::Serialize)]
+pub struct Place {
+    /// Which input: `electrodes`, `maps` or `settings`.
+    pub input: Option<&'static str>,
+    /// Name of the file, where one is known.
+    pub file: Option<String>,
+    /// Line in the text.
+    pub line: Option<usize>,
+    /// Column of the table (a field, not a character).
+    pub column: Option<usize>,
+    /// Byte in the file.
+    pub byte: Option<usize>,
+    /// Label of an electrode.
+    pub label: Option<String>,
+    /// Name of a map.
+    pub map: Option<String>,
+}
+
+impl Place {
+    /// A whole input.
+    pub fn input(input: &'static str) -> Self {
+        Self { input: Some(input), ..Self::default() }
+    }
+
+    /// A line of an input.
+    pub fn line(input: &'static str, line: usize) -> Self {
+        Self { line: Some(line), ..Self::input(input) }
+    }
+
+    /// A field of a line of an input.
+    pub fn field(input: &'static str, line: usize, column: usize) -> Self {
+        Self { column: Some(column), ..Self::line(input, line) }
+    }
+}
+
+/// A value that a message mentions.
+#[derive(Clone, Debug, PartialEq, serde::Serialize)]
+#[serde(untagged)]
+pub enum Value {
+    /// A word, a label, a piece of the input.
+    Text(String),
+    /// A measured number; its unit is told by its name.
+    Number(f64),
+    /// A count.
+    Count(usize),
+    /// Several words.
+    List(Vec<String>),
+}
+
+impl From<&str> for Value {
+    fn from(text: &str) -> Self {
+        Self::Text(text.into())
+    }
+}
+impl From<String> for Value {
+    fn from(text: String) -> Self {
+        Self::Text(text)
+    }
+}
+impl From<f64> for Value {
+    fn from(number: f64) -> Self {
+        Self::Number(number)
+    }
+}
+impl From<usize> for Value {
+    fn from(count: usize) -> Self {
+        Self::Count(count)
+    }
+}
+impl From<Vec<String>> for Value {
+    fn from(list: Vec<String>) -> Self {
+        Self::List(list)
+    }
+}
+
+macro_rules! codes {
+    ($($(#[doc = $doc:literal])* $name:ident = $text:literal,)*) => {
+        /// Every error and note that the program knows.
+        #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
+        pub enum Code { $($(#[doc = $doc])* $name,)* }
+
+        impl Code {
+            /// All codes.
+            pub const ALL: &[Self] = &[$(Self::$name,)*];
+
+            /// The code as it stands in reports.
+            pub fn as_str(self) -> &'static str {
+                match self { $(Self::$name => $text,)* }
+            }
+        }
+    };
+}
+
+codes! {
+    /// Error: a setting that does not exist, or a value it cannot take.
+    SettingsUnknown = "settings-unknown",
+    /// Error: the head asked for cannot be.
+    HeadInvalid = "head-invalid",
+    /// Error: an input without any content.
+    InputEmpty = "input-empty",
+    /// Error: an input over the size limit.
+    InputTooLarge = "input-too-large",
+    /// Error: an input that is not UTF-8 text.
+    InputEncoding = "input-encoding",
+    /// Error: the table lacks the columns it needs.
+    TableColumns = "table-columns",
+    /// Error: a line has more or fewer fields than the others.
+    TableRagged = "table-ragged",
+    /// Error: a field that should hold a number.
+    NumberExpected = "number-expected",
+    /// Error: a label that stands twice.
+    LabelDuplicate = "label-duplicate",
+    /// Error: no label of the maps is among the electrodes.
+    LabelsUnmatched = "labels-unmatched",
+    /// Error: fewer than ten electrodes with position and value.
+    ElectrodesTooFew = "electrodes-too-few",
+    /// Error: more electrodes than the limit.
+    ElectrodesTooMany = "electrodes-too-many",
+    /// Error: two electrodes at one place.
+    ElectrodesCoincident = "electrodes-coincident",
+    /// Error: all electrodes on one line.
+    ElectrodesCollinear = "electrodes-collinear",
+    /// Error: all electrodes in one plane.
+    ElectrodesCoplanar = "electrodes-coplanar",
+    /// Error: the positions are of no head's size in m, cm or mm.
+    UnitsUnrecognised = "units-unrecognised",
+    /// Error: a table of maps without a map.
+    MapsNone = "maps-none",
+    /// Error: more maps than the limit.
+    MapsTooMany = "maps-too-many",
+    /// Error: a map with the same value at every electrode.
+    MapConstant = "map-constant",
+    /// Error: a map that lacks a value which other maps have.
+    MapIncomplete = "map-incomplete",
+    /// Error: there is no map of this number.
+    MapIndex = "map-index",
+    /// Note: x right, y front, z up was assumed.
+    AxesAssumed = "axes-assumed",
+    /// Note: the length unit was recognised by the size of the head.
+    UnitRecognised = "unit-recognised",
+    /// Note: positions on a unit sphere were scaled to the standard head.
+    UnitSphereScaled = "unit-sphere-scaled",
+    /// Note: positions come from the labels alone.
+    StandardPositions = "standard-positions",
+    /// Note: few electrodes, few degrees of freedom.
+    FewElectrodes = "few-electrodes",
+    /// Note: the maps were referred to the average of the electrodes used.
+    AverageReferenced = "average-referenced",
+    /// Note: the unit of the map is not known.
+    UnitRelative = "unit-relative",
+    /// Note: positions for which the maps have no value.
+    PositionsWithoutValue = "positions-without-value",
+    /// Note: values for which no position is known.
+    ValuesWithoutPosition = "values-without-position",
+    /// Note: electrodes left out by hand.
+    Excluded = "excluded",
+    /// Note: electrodes to leave out that are not in the table.
+    ExcludeUnmatched = "exclude-unmatched",
+    /// Note: the electrodes lie far from the fitted sphere.
+    SphereDeviation = "sphere-deviation",
+    /// Note: the quick lead field was not accurate enough for this head; the series serves throughout.
+    SeriesOnly = "series-only",
+}
+
+impl serde::Serialize for Code {
+    fn serialize<S: serde::Serializer>(&self, serializer: S) -> Result<S::Ok, S::Error> {
+        serializer.serialize_str(self.as_str())
+    }
+}
+
+/// One thing to say: a note, or the content of an [`Error`].
+#[derive(Clone, Debug, PartialEq)]
+pub struct Finding {
+    /// What it is.
+    pub code: Code,
+    /// Where it is.
+    pub place: Option<Place>,
+    /// The values its message needs, by name.
+    pub values: Vec<(&'static str, Value)>,
+}
+
+impl Finding {
+    /// A finding without place and values.
+    pub fn new(code: Code) -> Self {
+        Self { code, place: None, values: Vec::new() }
+    }
+
+    /// The same, at a place.
+    pub fn at(mut self, place: Place) -> Self {
+        self.place = Some(place);
+        self
+    }
+
+    /// The same, with one more value.
+    pub fn with(mut self, name: &'static str, value: impl Into<Value>) -> Self {
+        self.values.push((name, value.into()));
+        self
+    }
+
+    /// The value of this name.
+    pub fn value(&self, name: &str) -> Option<&Value> {
+        self.values.iter().find(|(n, _)| *n == name).map(|(_, value)| value)
+    }
+}
+
+/// A finding that ends the work.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Error(Box<Finding>);
+
+impl Error {
+    /// What is wrong, where, and with which values.
+    pub fn finding(&self) -> &Finding {
+        &self.0
+    }
+}
+
+impl From<Finding> for Error {
+    fn from(finding: Finding) -> Self {
+        Self(Box::new(finding))
+    }
+}

@@ -1,0 +1,143 @@
+//! The dipole that explains a map best: the global minimum of residual variance over all positions and moments.
+//!
+//! The moment is eliminated (variable projection; Golub & Pereyra 1973, SIAM J Numer Anal 10:413–432): at a position the
+//! best moment solves a linear problem, so that only three coordinates are searched. A grid of positions gives separate
+//! starts, Newton steps with exact derivatives refine them inside the ball of allowed sources, and the best one stands.
+
+mod grid;
+mod objective;
+mod refine;
+
+use crate::forward::LeadField;
+use crate::math::{Vec3, centre, dot};
+use grid::Grid;
+use ndarray::Array2;
+use objective::Objective;
+
+/// A fitted dipole, in head coordinates.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Fit {
+    /// Position in scalp radii from the centre.
+    pub position: Vec3,
+    /// Moment in nAm, if the map is in µV.
+    pub moment: Vec3,
+    /// Residual sum of squares over the sum of squares of the average-referenced map.
+    pub residual_variance: f64,
+    /// Why the search ended.
+    pub stopped: Stopped,
+    /// Evaluations of the residual in all, those of the grid included.
+    pub evaluations: usize,
+}
+
+/// Why a search ended.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, serde::Serialize)]
+#[serde(rename_all = "kebab-case")]
+pub enum Stopped {
+    /// At a minimum inside the region of sources.
+    Converged,
+    /// At the best position on the boundary of that region; the residual still falls outwards.
+    Boundary,
+    /// After too many steps: the position is not a proven minimum.
+    IterationLimit,
+}
+
+/// Fits maps of one set of electrodes in one head.
+#[derive(Clone, Debug)]
+pub struct Fitter {
+    field: LeadField,
+    grid: Grid,
+}
+
+/// Starts that are refined for each map.
+const STARTS: usize = 5;
+
+/// Maps that share one pass over the grid.
+pub const BATCH: usize = 16;
+
+impl Fitter {
+    /// Prepares the grid of lead fields.
+    pub fn new(field: LeadField) -> Self {
+        let grid = Grid::new(&field);
+        Self { field, grid }
+    }
+
+    /// The lead field that the fits use.
+    pub fn field(&self) -> &LeadField {
+        &self.field
+    }
+
+    /// The best dipole of a map: one value in µV for each electrode, whatever its reference. `None` for a map that is the
+    /// same everywhere.
+    pub fn fit(&self, map: &[f64]) -> Option<Fit> {
+        self.fit_batch(&[map]).pop().flatten()
+    }
+
+    /// The best dipoles of several maps; each result is the same as if fitted alone.
+    pub fn fit_batch(&self, maps: &[&[f64]]) -> Vec<Option<Fit>> {
+        let prepared: Vec<Option<(Vec<f64>, f64)>> = maps.iter().map(|map| normalise(map)).collect();
+        let mut columns = Array2::<f32>::zeros((self.field.count(), maps.len()));
+        for (mut column, map) in columns.columns_mut().into_iter().zip(&prepared) {
+            if let Some((map, _)) = map {
+                column.iter_mut().zip(map).for_each(|(value, v)| *value = *v as f32);
+            }
+        }
+        let energies = self.grid.explained(&columns);
+        prepared
+            .into_iter()
+            .zip(energies.columns())
+            .map(|(map, energies)| {
+                let (map, size) = map?;
+                let mut objective = Objective::new(&self.field, map);
+                let starts = self.grid.starts(energies, STARTS);
+                let best = starts
+                    .into_iter()
+                    .map(|start| refine::refine(&mut objective, start, self.field.reach(), self.grid.step()))
+                    .reduce(|best, next| if next.residual_variance < best.residual_variance { next } else { best })?;
+                Some(Fit {
+                    moment: best.moment * (size / self.field.scale()),
+                    evaluations: self.grid.count() + objective.evaluations(),
+                    ..best
+                })
+            })
+            .collect()
+    }
+
+    /// The minimum that Newton steps reach from one start, in scalp radii from the centre; for checks of the search.
+    pub fn fit_from(&self, map: &[f64], start: Vec3) -> Option<Fit> {
+        let (map, size) = normalise(map)?;
+        let mut objective = Objective::new(&self.field, map);
+        let fit = refine::refine(&mut objective, start, self.field.reach(), self.grid.step());
+        Some(Fit { moment: fit.moment * (size / self.field.scale()), evaluations: objective.evaluations(), ..fit })
+    }
+
+    /// What the best moment at a given position leaves over, as a share of the map's sum of squares.
+    pub fn residual_variance_at(&self, map: &[f64], position: Vec3) -> Option<f64> {
+        let (map, _) = normalise(map)?;
+        Some(Objective::new(&self.field, map).evaluate(position).residual_variance)
+    }
+
+    /// The potential of a dipole in µV, average-referenced.
+    pub fn project(&self, position: Vec3, moment: Vec3) -> Vec<f64> {
+        let rows = self.field.quick(position);
+        let mut map: Vec<f64> = rows.rows().into_iter().map(|r| Vec3::new(r[0], r[1], r[2]).dot(moment)).collect();
+        centre(&mut map);
+        map
+    }
+}
+
+/// The average-referenced map with unit length, and its length; `None` for a map that is constant to rounding.
+fn normalise(map: &[f64]) -> Option<(Vec<f64>, f64)> {
+    let largest = map.iter().fold(0.0f64, |m, v| m.max(v.abs()));
+    if !(largest > 0.0 && largest.is_finite()) {
+        return None;
+    }
+    // Scaled first: squares of very large or small values would leave the range of numbers.
+    let mut centred: Vec<f64> = map.iter().map(|v| v / largest).collect();
+    centre(&mut centred);
+    let length = dot(&centred, &centred).sqrt();
+    if length <= 1e-12 {
+        return None;
+    }
+    centred.iter_mut().for_each(|v| *v /= length);
+    Some((centred, length * largest))
+}

@@ -1,0 +1,264 @@
+use super::potential::{LANES, Potential};
+use super::{Images, MAX_ECCENTRICITY, Series};
+use crate::head::Shells;
+use crate::math::Vec3;
+use ndarray::Array2;
+
+/// The lead field of a set of electrodes on a layered sphere.
+#[derive(Clone, Debug)]
+pub struct LeadField {
+    directions: Vec<Vec3>,
+    blocks: Vec<[[f64; LANES]; 3]>,
+    series: Series,
+    images: Option<Images>,
+    scale: f64,
+    brain_ratio: f64,
+}
+
+/// The lead field around one position: what the fit needs of it.
+#[derive(Clone, Debug, Default)]
+pub struct Local {
+    pub(crate) position: Vec3,
+    pub(super) potentials: Vec<Potential>,
+}
+
+impl LeadField {
+    /// Electrodes in these unit directions from the centre, on a head of this scalp radius in millimetres.
+    pub fn new(shells: &Shells, radius_mm: f64, directions: Vec<Vec3>) -> Self {
+        let series = Series::new(shells);
+        let images = Images::new(shells, &series);
+        Self::with_kernels(shells, radius_mm, directions, series, images)
+    }
+
+    /// The same with the plain series only.
+    pub fn by_series(shells: &Shells, radius_mm: f64, directions: Vec<Vec3>) -> Self {
+        Self::with_kernels(shells, radius_mm, directions, Series::new(shells), None)
+    }
+
+    fn with_kernels(
+        shells: &Shells,
+        radius_mm: f64,
+        directions: Vec<Vec3>,
+        series: Series,
+        images: Option<Images>,
+    ) -> Self {
+        let blocks = directions
+            .chunks(LANES)
+            .map(|block| [0, 1, 2].map(|axis| core::array::from_fn(|lane| block.get(lane).map_or(0.0, |e| e[axis]))))
+            .collect();
+        // 1 nAm over 1 S/m · 1 mm² is 1 mV = 1000 µV.
+        let scale = 1000.0 / (4.0 * core::f64::consts::PI * shells.specs()[0].conductivity * radius_mm * radius_mm);
+        Self { directions, blocks, series, images, scale, brain_ratio: shells.brain_ratio() }
+    }
+
+    /// Unit directions of the electrodes.
+    pub fn directions(&self) -> &[Vec3] {
+        &self.directions
+    }
+
+    /// Number of electrodes.
+    pub fn count(&self) -> usize {
+        self.directions.len()
+    }
+
+    /// Radius of the innermost shell in scalp radii.
+    pub fn brain_ratio(&self) -> f64 {
+        self.brain_ratio
+    }
+
+    /// Largest distance of a source from the centre, in scalp radii.
+    pub fn reach(&self) -> f64 {
+        MAX_ECCENTRICITY * self.brain_ratio
+    }
+
+    /// The quick evaluation, where one is accurate enough for this head.
+    pub fn images(&self) -> Option<&Images> {
+        self.images.as_ref()
+    }
+
+    /// The series.
+    pub fn series(&self) -> &Series {
+        &self.series
+    }
+
+    /// κ: µV per nAm of a lead field of 1 on the unit sphere.
+    pub fn scale(&self) -> f64 {
+        self.scale
+    }
+
+    /// Lead field by the series: potential in µV per nAm of moment along x, y, z; one row per electrode. The potential's
+    /// mean over the whole scalp is zero; `position` is in scalp radii from the centre.
+    pub fn exact(&self, position: Vec3) -> Array2<f64> {
+        self.matrix(&self.local_by(position, None, 0))
+    }
+
+    /// The same by the quick evaluation, or by the series where there is none.
+    pub fn quick(&self, position: Vec3) -> Array2<f64> {
+        self.matrix(&self.local(position))
+    }
+
+    /// Derivatives of the lead field: for each electrode the symmetric matrix ∂Lᵢ/∂pⱼ in µV per nAm and scalp radius,
+    /// as rows (xx, xy, xz, yy, yz, zz).
+    pub fn gradient(&self, position: Vec3) -> Array2<f64> {
+        let local = self.local(position);
+        let p = position;
+        let mut rows = Array2::zeros((self.count(), 6));
+        for (index, e) in self.directions.iter().enumerate() {
+            let t = local.terms(index, *e);
+            for (column, (i, j)) in [(0, 0), (0, 1), (0, 2), (1, 1), (1, 2), (2, 2)].into_iter().enumerate() {
+                let diagonal = if i == j { 2.0 * t.u } else { 0.0 };
+                rows[[index, column]] = self.scale
+                    * (t.ss * e[i] * e[j]
+                        + 2.0 * t.us * (e[i] * p[j] + p[i] * e[j])
+                        + 4.0 * t.uu * p[i] * p[j]
+                        + diagonal);
+            }
+        }
+        rows
+    }
+
+    /// The lead field around a position, for the fit.
+    pub fn local(&self, position: Vec3) -> Local {
+        self.local_by(position, self.images.as_ref(), 2)
+    }
+
+    pub(crate) fn blocks(&self) -> &[[[f64; LANES]; 3]] {
+        &self.blocks
+    }
+
+    fn local_by(&self, position: Vec3, images: Option<&Images>, order: usize) -> Local {
+        let u = position.dot(position);
+        let terms = if images.is_some() { 0 } else { self.series.terms(u.sqrt(), order) };
+        let potentials = self
+            .blocks
+            .iter()
+            .map(|[x, y, z]| {
+                let s = core::array::from_fn(|l| x[l] * position[0] + y[l] * position[1] + z[l] * position[2]);
+                match images {
+                    Some(images) => images.potential(u, &s),
+                    None => self.series.potential(terms, u, &s),
+                }
+            })
+            .collect();
+        Local { position, potentials }
+    }
+
+    fn matrix(&self, local: &Local) -> Array2<f64> {
+        let mut rows = Array2::zeros((self.count(), 3));
+        for (index, e) in self.directions.iter().enumerate() {
+            let t = local.terms(index, *e);
+            for axis in 0..3 {
+                rows[[index, axis]] = self.scale * (t.s * e[axis] + 2.0 * t.u * local.position[axis]);
+            }
+        }
+        rows
+    }
+}
+
+/// Derivatives of Φ at one electrode; those with two or more s follow from Laplace's equation
+/// 6Φᵤ + 4uΦᵤᵤ + 4sΦᵤₛ + Φₛₛ = 0.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Terms {
+    pub s: f64,
+    pub u: f64,
+    pub ss: f64,
+    pub us: f64,
+    pub uu: f64,
+    pub sss: f64,
+    pub uss: f64,
+    pub uus: f64,
+    pub uuu: f64,
+}
+
+impl Local {
+    pub(crate) fn terms(&self, index: usize, direction: Vec3) -> Terms {
+        self.lane(index / LANES, index % LANES, self.position.dot(self.position), self.position.dot(direction))
+    }
+
+    /// Of lane `lane` in block `block`, where u and s are known.
+    #[inline]
+    pub(crate) fn lane(&self, block: usize, lane: usize, u: f64, s: f64) -> Terms {
+        let t = &self.potentials[block];
+        let (du, us, uu, uus, uuu) = (t.u[lane], t.us[lane], t.uu[lane], t.uus[lane], t.uuu[lane]);
+        let uss = -(10.0 * uu + 4.0 * u * uuu + 4.0 * s * uus);
+        Terms {
+            s: t.s[lane],
+            u: du,
+            ss: -(6.0 * du + 4.0 * u * uu + 4.0 * s * us),
+            us,
+            uu,
+            sss: -(10.0 * us + 4.0 * u * uus + 4.0 * s * uss),
+            uss,
+            uus,
+            uuu,
+        }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::head::ShellSpec;
+
+    fn directions() -> Vec<Vec3> {
+        (0..50)
+            .map(|i| {
+                let (z, angle) = (1.0 - 2.0 * (f64::from(i) + 0.5) / 50.0, 2.399 * f64::from(i));
+                let r = (1.0 - z * z).sqrt();
+                Vec3::new(r * libm::cos(angle), r * libm::sin(angle), z)
+            })
+            .chain([Vec3::new(0.0, 0.0, 1.0), Vec3::new(0.0, 0.0, -1.0)])
+            .collect()
+    }
+
+    fn largest(a: &Array2<f64>) -> f64 {
+        a.iter().fold(0.0, |m: f64, v| m.max(v.abs()))
+    }
+
+    #[test]
+    fn images_keep_their_bound_against_the_series() {
+        let field = LeadField::new(&Shells::standard(), 88.0, directions());
+        let images = field.images().expect("the standard head has a quick evaluation");
+        assert!(images.count() > 1 && images.error_bound() <= super::super::QUICK_TOLERANCE);
+        for eccentricity in [0.0, 0.1, 0.5, 0.8, 0.9, 0.95, 0.98] {
+            for axis in [Vec3::new(0.0, 0.0, 1.0), Vec3::new(0.6, 0.48, 0.64)] {
+                let p = axis * (eccentricity * field.brain_ratio());
+                let (exact, quick) = (field.exact(p), field.quick(p));
+                let difference = largest(&(&exact - &quick)) / largest(&exact);
+                assert!(difference <= 1e-8, "{eccentricity}: {difference:e}");
+            }
+        }
+    }
+
+    #[test]
+    fn a_homogeneous_head_needs_one_image() {
+        let homogeneous =
+            Shells::new(vec![ShellSpec { tissue: "head".into(), ratio: 1.0, conductivity: 0.33 }]).unwrap();
+        let field = LeadField::new(&homogeneous, 88.0, directions());
+        assert_eq!(field.images().map(Images::count), Some(1));
+    }
+
+    #[test]
+    fn derivatives_agree_with_differences_in_both_evaluations() {
+        let shells = Shells::standard();
+        let all = [LeadField::new(&shells, 88.0, directions()), LeadField::by_series(&shells, 88.0, directions())];
+        for field in &all {
+            for p in [Vec3::ZERO, Vec3::new(0.1, -0.3, 0.2), Vec3::new(0.0, 0.0, 0.8), Vec3::new(0.5, 0.5, -0.4)] {
+                let h = 1e-5;
+                let gradient = field.gradient(p);
+                for j in 0..3 {
+                    let mut step = [0.0; 3];
+                    step[j] = h;
+                    let difference = (field.quick(p + Vec3(step)) - field.quick(p - Vec3(step))) / (2.0 * h);
+                    for (index, row) in difference.rows().into_iter().enumerate() {
+                        for i in 0..3 {
+                            let column = [[0, 1, 2], [1, 3, 4], [2, 4, 5]][i][j];
+                            let error = (row[i] - gradient[[index, column]]).abs();
+                            assert!(error <= 2e-6 * largest(&gradient), "{p:?} {index} {i}{j}: {error:e}");
+                        }
+                    }
+                }
+            }
+        }
+    }
+}

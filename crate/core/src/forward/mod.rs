@@ -1,0 +1,25 @@
+//! The lead field: the potential at the electrodes per unit moment of a dipole, and its derivatives.
+//!
+//! Work is done on the unit sphere: p is the dipole's position over the scalp radius R, e an electrode's direction
+//! (|e| = 1). By reciprocity the lead field is a gradient, L(p) = κ ∇Φ(u, s), with u = p·p, s = p·e and
+//! κ = 1 / (4π σ₁ R²), where σ₁ is the conductivity of the innermost shell. Written in u and s nothing is singular at
+//! the centre or at the poles. Φ is harmonic in p, which spares half of its derivatives.
+//!
+//! - [`Series`]: the infinite sum of Legendre terms, cut off by a bound of its tail; the measure of all else.
+//! - [`Images`]: a few image sources whose strengths are solved for, with a proven bound of their error; quick.
+
+mod images;
+mod lead_field;
+mod potential;
+mod series;
+
+pub use images::Images;
+pub use lead_field::{LeadField, Local};
+pub use series::Series;
+
+/// Largest eccentricity (distance from the centre over the radius of the innermost shell) that sources may have.
+pub const MAX_ECCENTRICITY: f64 = 0.98;
+
+/// Largest error bound of the quick lead field, relative to the largest value of a radial dipole, that is taken for a
+/// head. A tangential dipole reaches at least half of that value, so that no error exceeds 1e-8 of what it belongs to.
+pub const QUICK_TOLERANCE: f64 = 4e-9;

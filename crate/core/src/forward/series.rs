@@ -1,0 +1,114 @@
+use super::potential::{LANES, Potential};
+use crate::head::Shells;
+
+/// The infinite series of Legendre terms of a layered sphere.
+///
+/// Φ(u, s) = Σₙ gₙ Hₙ(u, s), where Hₙ = |p|ⁿ Pₙ(s / |p|) is a polynomial in u and s, and gₙ carries the potential from
+/// the innermost shell to the scalp (de Munck & Peters 1993, IEEE TBME 40:1166–1174; Zhang 1995, Phys Med Biol
+/// 40:335–349). On the unit sphere a homogeneous head has gₙ = (2n + 1) / n.
+///
+/// The terms needed at a position come from a bound of what is left out. Bernstein's inequality gives
+/// |∇Hₙ| ≤ n |p|ⁿ⁻¹, hence term n is at most fₙ (2n + 1) |p|ⁿ⁻¹ with fₙ = n gₙ / (2n + 1).
+#[derive(Clone, Debug)]
+pub struct Series {
+    /// gₙ for n = 1, 2, …; index 0 is unused.
+    gains: Vec<f64>,
+    /// maxₘ≥ₙ fₘ.
+    envelope: Vec<f64>,
+}
+
+/// No position within reach needs more terms: 0.98⁴⁰⁰⁰ < 10⁻³⁴.
+const MOST_TERMS: usize = 4000;
+
+/// What the cut series may lack, relative to the sum of the bounds of all terms.
+const TAIL: f64 = 1e-14;
+
+impl Series {
+    /// The gains of these shells.
+    pub fn new(shells: &Shells) -> Self {
+        let gains: Vec<f64> = (0..=MOST_TERMS).map(|n| if n == 0 { 0.0 } else { gain(n as f64, shells) }).collect();
+        let mut envelope = vec![0.0; gains.len()];
+        let mut most: f64 = 0.0;
+        for n in (1..gains.len()).rev() {
+            most = most.max(gains[n].abs() * n as f64 / (2 * n + 1) as f64);
+            envelope[n] = most;
+        }
+        Self { gains, envelope }
+    }
+
+    /// gₙ for n = 1, 2, …
+    pub fn gains(&self) -> &[f64] {
+        &self.gains[1..]
+    }
+
+    /// Number of terms needed at this distance from the centre, in scalp radii, for the lead field (`order` 0) or its
+    /// first or second derivatives; each derivative brings at most a factor n / |p|.
+    pub fn terms(&self, distance: f64, order: usize) -> usize {
+        let bound = |n: usize| {
+            let power = n.saturating_sub(1 + order) as f64;
+            self.envelope[n] * (2 * n + 1) as f64 * libm::pow(n as f64, order as f64) * libm::pow(distance, power)
+        };
+        let mut sum = 0.0;
+        for n in 1..MOST_TERMS {
+            sum += bound(n);
+            // The terms after n shrink at least by this factor each.
+            let growth = (n + 2) as f64 / (n + 1) as f64;
+            let shrink = distance * libm::pow(growth, (order + 1) as f64);
+            if n > order && shrink < 1.0 && bound(n + 1) / (1.0 - shrink) <= TAIL * sum {
+                return n;
+            }
+        }
+        MOST_TERMS
+    }
+
+    /// Derivatives of Φ with the given number of terms.
+    ///
+    /// With Dₙ, Eₙ, Fₙ the first three derivatives of Hₙ by s, the derivative by u of each is −½ of the next one of
+    /// degree n − 1, for example ∂Hₙ/∂u = −½ Dₙ₋₁; and Dₙ = u Dₙ₋₂ + (2n − 1) Hₙ₋₁, likewise Eₙ and Fₙ.
+    pub(super) fn potential(&self, terms: usize, u: f64, s: &[f64; LANES]) -> Potential {
+        let mut sum = Potential::default();
+        for lane in 0..LANES {
+            let s = s[lane];
+            // [degree n − 1, degree n − 2] of H, D, E, F; F once more for n − 3.
+            let (mut h, mut d, mut e, mut f) = ([1.0, 0.0], [0.0, 0.0], [0.0, 0.0], [0.0, 0.0]);
+            let mut f3 = 0.0;
+            for (n, &gain) in self.gains.iter().enumerate().skip(1).take(terms) {
+                let n = n as f64;
+                let odd = 2.0 * n - 1.0;
+                let next_h = (odd * s * h[0] - (n - 1.0) * u * h[1]) / n;
+                let next_d = u * d[1] + odd * h[0];
+                let next_e = u * e[1] + odd * d[0];
+                let next_f = u * f[1] + odd * e[0];
+                sum.s[lane] += gain * next_d;
+                sum.u[lane] -= 0.5 * gain * d[0];
+                sum.us[lane] -= 0.5 * gain * e[0];
+                sum.uu[lane] += 0.25 * gain * e[1];
+                sum.uus[lane] += 0.25 * gain * f[1];
+                sum.uuu[lane] -= 0.125 * gain * f3;
+                (h, d, e) = ([next_h, h[0]], [next_d, d[0]], [next_e, e[0]]);
+                f3 = f[1];
+                f = [next_f, f[0]];
+            }
+        }
+        sum
+    }
+}
+
+/// gₙ of one degree: potential v and radial current j, both continuous, are carried inwards from v = 1, j = 0 on the
+/// scalp. Each step leaves out the common factor (inner / outer radius)^−(n+1), which cancels at the end.
+fn gain(n: f64, shells: &Shells) -> f64 {
+    let specs = shells.specs();
+    let (mut v, mut j) = (1.0, 0.0);
+    for pair in specs.windows(2).rev() {
+        let (inner, outer) = (&pair[0], &pair[1]);
+        let slope = j * outer.ratio / outer.conductivity;
+        let growing = ((n + 1.0) * v + slope) / (2.0 * n + 1.0);
+        let decaying = (n * v - slope) / (2.0 * n + 1.0);
+        let step = inner.ratio / outer.ratio;
+        let growing = growing * libm::pow(step, 2.0 * n + 1.0);
+        v = growing + decaying;
+        j = outer.conductivity / inner.ratio * (n * growing - (n + 1.0) * decaying);
+    }
+    let innermost = &specs[0];
+    (2.0 * n + 1.0) / (n * v - innermost.ratio * j / innermost.conductivity)
+}

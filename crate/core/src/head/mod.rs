@@ -1,0 +1,15 @@
+//! The head: a sphere fitted to the electrodes and the concentric shells inside it.
+
+mod shells;
+mod sphere;
+
+pub use shells::{Shell, ShellSpec, Shells, Tissue};
+pub(crate) use sphere::spread;
+pub use sphere::{Sphere, SphereFit};
+
+/// Radius in millimetres of the head that electrodes without measured positions stand on: the outer radius of
+/// Cuffin & Cohen 1979 (EEG Clin Neurophysiol 47:132–146).
+pub const STANDARD_RADIUS_MM: f64 = 88.0;
+
+/// Radii in millimetres that a head may have, from infants to large adults.
+pub const HEAD_RADII_MM: core::ops::RangeInclusive<f64> = 40.0..=120.0;
