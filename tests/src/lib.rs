@@ -1,1 +1,32 @@
-//! Shared helpers of the checks.
+//! Shared helpers of the checks: browsers, the page, Node, outside values, invented maps.
+mod browser;
+mod canary;
+mod driver;
+mod folder;
+mod node;
+mod page;
+mod place;
+mod program;
+mod session;
+mod variant;
+
+pub use browser::Browser;
+pub use canary::Canary;
+pub use folder::Folder;
+pub use node::Node;
+pub use page::{DroppedFile, Page};
+pub use place::{data, dist_file, example, screenshot_file, tests_folder};
+pub use session::{CONTROL, Element, Session, TAB};
+pub use variant::Variant;
+
+/// Text that went wrong on the way to a browser, a driver or Node.
+pub type Outcome<T> = Result<T, String>;
+
+/// Makes two tests of each check, one per browser; the check takes a [`Browser`].
+#[macro_export]
+macro_rules! in_both_browsers {
+    ($($(#[$note:meta])* $check:ident),+ $(,)?) => {
+        mod chromium { $( $(#[$note])* #[test] fn $check() { super::$check($crate::Browser::Chromium); } )+ }
+        mod firefox { $( $(#[$note])* #[test] fn $check() { super::$check($crate::Browser::Firefox); } )+ }
+    };
+}

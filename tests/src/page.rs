@@ -1,0 +1,226 @@
+//! The page in a browser, by what a person can do with it.
+use crate::browser::Browser;
+use crate::place::{dist_file, screenshot_file};
+use crate::session::{CONTROL, Element, Session};
+use crate::{Outcome, tests_folder};
+use serde_json::{Value, json};
+use std::path::Path;
+use std::thread::sleep;
+use std::time::{Duration, Instant};
+
+/// How long a state may take to come: never a measure of speed, only the end of hope.
+const PATIENCE: Duration = Duration::from_secs(90);
+
+/// A file dropped on the page.
+pub struct DroppedFile<'a> {
+    /// Its name.
+    pub name: &'a str,
+    /// Its content.
+    pub text: &'a str,
+}
+
+/// An open page. Every method panics where the browser does not do as asked.
+pub struct Page {
+    session: Session,
+    browser: Browser,
+}
+
+impl Page {
+    /// Opens the delivered page from disk and waits until it can be used.
+    pub fn open(browser: Browser) -> Self {
+        let page = Self::load(browser, &dist_file("inward.html"));
+        page.wait_for("ready").unwrap_or_else(|why| panic!("{}: {why}", browser.name()));
+        page
+    }
+
+    /// Opens a file as a page, without waiting for more than the document.
+    pub fn load(browser: Browser, file: &Path) -> Self {
+        let session = browser.window();
+        session.go(&format!("file://{}", file.display())).unwrap();
+        Self { session, browser }
+    }
+
+    /// The window that shows the page.
+    pub fn session(&self) -> &Session {
+        &self.session
+    }
+
+    /// State of the page: loading, ready, busy, answered or failed.
+    pub fn state(&self) -> String {
+        self.value("return document.documentElement.dataset.state").as_str().unwrap_or_default().into()
+    }
+
+    /// Waits for a state.
+    pub fn wait_for(&self, state: &str) -> Outcome<()> {
+        self.wait_for_within(state, PATIENCE)
+    }
+
+    /// Waits for a state, no longer than told.
+    pub fn wait_for_within(&self, state: &str, patience: Duration) -> Outcome<()> {
+        let start = Instant::now();
+        while self.state() != state {
+            if start.elapsed() > patience {
+                return Err(format!("the page is {:?}, not {state:?}; {}", self.state(), self.failure_text()));
+            }
+            sleep(Duration::from_millis(40));
+        }
+        Ok(())
+    }
+
+    /// Waits for an answer, or panics with what the page says instead.
+    pub fn wait_for_answer(&self) {
+        self.until("an answer", |page| page.state() == "answered");
+        assert!(self.visible("#answer"), "the answer is shown");
+    }
+
+    /// Waits for a failure, or panics.
+    pub fn wait_for_failure(&self) {
+        self.until("a failure", |page| page.state() == "failed");
+        assert!(self.visible("#failure"), "the failure is shown");
+    }
+
+    /// Waits until something holds.
+    pub fn until(&self, what: &str, mut holds: impl FnMut(&Self) -> bool) {
+        let start = Instant::now();
+        while !holds(self) {
+            if start.elapsed() > PATIENCE {
+                self.picture("waited-in-vain");
+                panic!(
+                    "{}: waited for {what}; the page is {:?}; {}",
+                    self.browser.name(),
+                    self.state(),
+                    self.failure_text()
+                );
+            }
+            sleep(Duration::from_millis(40));
+        }
+    }
+
+    /// What the failure panel says.
+    pub fn failure_text(&self) -> String {
+        self.value("const p = document.querySelector('#failure'); return p ? p.innerText : '(no panel)'")
+            .as_str()
+            .unwrap_or_default()
+            .into()
+    }
+
+    /// An element that must be there.
+    pub fn find(&self, selector: &str) -> Element {
+        self.session.find(selector).unwrap_or_else(|why| panic!("{}: {selector}: {why}", self.browser.name()))
+    }
+
+    /// Visible text of an element.
+    pub fn text(&self, selector: &str) -> String {
+        self.session.text(&self.find(selector)).unwrap()
+    }
+
+    /// Whether an element takes room on the page.
+    pub fn visible(&self, selector: &str) -> bool {
+        let script = "const e = document.querySelector(arguments[0]);\
+                      return !!e && e.getClientRects().length > 0 && getComputedStyle(e).visibility === 'visible'";
+        self.ask(script, &[json!(selector)]) == json!(true)
+    }
+
+    /// Clicks on an element.
+    pub fn click(&self, selector: &str) {
+        self.session.click(&self.find(selector)).unwrap_or_else(|why| panic!("{selector}: {why}"));
+    }
+
+    /// Value of a script without arguments.
+    pub fn value(&self, script: &str) -> Value {
+        self.ask(script, &[])
+    }
+
+    /// Value of a script.
+    pub fn ask(&self, script: &str, arguments: &[Value]) -> Value {
+        self.session.run(script, arguments).unwrap_or_else(|why| panic!("{}: {why}", self.browser.name()))
+    }
+
+    /// Pastes text into a field, or where no field is for `body`: copied and pasted by the keyboard, as people do.
+    pub fn paste(&self, selector: &str, text: &str) {
+        let copy = "\
+            const source = document.createElement('textarea');\
+            source.id = 'copied-from'; source.value = arguments[0];\
+            document.body.append(source); source.focus(); source.select();";
+        self.ask(copy, &[json!(text)]);
+        self.session.chord(CONTROL, 'c').unwrap();
+        let aim = "\
+            document.querySelector('#copied-from').remove();\
+            const target = document.querySelector(arguments[0]);\
+            document.activeElement?.blur(); target.focus(); target.select?.();";
+        self.ask(aim, &[json!(selector)]);
+        self.session.chord(CONTROL, 'v').unwrap();
+    }
+
+    /// Picks a file in a file field.
+    pub fn pick(&self, selector: &str, file: &Path) {
+        self.session.type_keys(&self.find(selector), &file.display().to_string()).unwrap();
+    }
+
+    /// Drops files somewhere on the page.
+    pub fn drop_files(&self, files: &[DroppedFile<'_>]) {
+        let script = "\
+            const data = new DataTransfer();\
+            for (const [name, text] of arguments[0]) data.items.add(new File([text], name, { type: 'text/plain' }));\
+            const target = document.querySelector('main') ?? document.body;\
+            for (const kind of ['dragenter', 'dragover', 'drop'])\
+              target.dispatchEvent(new DragEvent(kind, { dataTransfer: data, bubbles: true, cancelable: true, composed: true }));";
+        let files: Vec<Value> = files.iter().map(|file| json!([file.name, file.text])).collect();
+        self.ask(script, &[json!(files)]);
+    }
+
+    /// Colours of a canvas: width, height and the red, green, blue and alpha bytes row by row.
+    pub fn pixels(&self, selector: &str) -> (usize, usize, Vec<u8>) {
+        let script = "\
+            const canvas = document.querySelector(arguments[0]);\
+            const { width, height } = canvas;\
+            const bytes = canvas.getContext('2d').getImageData(0, 0, width, height).data;\
+            let text = ''; for (const byte of bytes) text += String.fromCharCode(byte);\
+            return [width, height, btoa(text)]";
+        let found = self.ask(script, &[json!(selector)]);
+        let bytes =
+            base64::Engine::decode(&base64::engine::general_purpose::STANDARD, found[2].as_str().unwrap()).unwrap();
+        (found[0].as_u64().unwrap() as usize, found[1].as_u64().unwrap() as usize, bytes)
+    }
+
+    /// Downloads the report by its button and reads the file that lands on disk.
+    pub fn download_report(&self) -> Value {
+        let file = self.session.downloads().join("inward-report.json");
+        let _ = std::fs::remove_file(&file);
+        self.click("#download-json");
+        let start = Instant::now();
+        loop {
+            // Half a file is not JSON yet.
+            if let Some(report) = std::fs::read_to_string(&file).ok().and_then(|text| serde_json::from_str(&text).ok())
+            {
+                return report;
+            }
+            assert!(start.elapsed() < PATIENCE, "{}: no report was downloaded", self.browser.name());
+            sleep(Duration::from_millis(40));
+        }
+    }
+
+    /// What the accessibility checker has against the page as it stands, one line per finding.
+    pub fn accessibility_findings(&self) -> Vec<String> {
+        let file = tests_folder().join("node_modules/axe-core/axe.min.js");
+        let checker = std::fs::read_to_string(&file)
+            .unwrap_or_else(|_| panic!("axe-core is missing: run `cargo xtask test --install`, or `npm ci` in tests/"));
+        let script = format!(
+            "{checker}; return axe.run(document, {{ resultTypes: ['violations'] }}).then(found => found.violations.flatMap(rule => \
+             rule.nodes.map(node => `${{rule.id}}: ${{node.target}}: ${{node.failureSummary}}`)))"
+        );
+        let found = self.value(&script);
+        found
+            .as_array()
+            .expect("a list of findings")
+            .iter()
+            .map(|line| line.as_str().unwrap_or_default().into())
+            .collect()
+    }
+
+    /// Keeps a picture of the window for looking at.
+    pub fn picture(&self, name: &str) {
+        let file = screenshot_file(&format!("{}-{name}", self.browser.name()));
+        self.session.picture(&file).unwrap();
+    }
+}

@@ -1,0 +1,158 @@
+//! One browser window driven through the WebDriver protocol (W3C).
+use crate::Outcome;
+use crate::driver::Driver;
+use crate::folder::Folder;
+use base64::Engine;
+use base64::engine::general_purpose::STANDARD;
+use serde_json::{Value, json};
+use std::path::{Path, PathBuf};
+use std::time::Duration;
+use ureq::Agent;
+
+/// The control key, as the protocol writes it.
+pub const CONTROL: char = '\u{E009}';
+
+/// The tabulator key.
+pub const TAB: char = '\u{E004}';
+
+/// Key under which the protocol keeps an element's reference.
+const ELEMENT: &str = "element-6066-11e4-a52e-4f735466cecf";
+
+/// Reference to an element of the open document.
+#[derive(Clone, Debug)]
+pub struct Element(String);
+
+/// An open browser window; ended when dropped.
+pub struct Session {
+    agent: Agent,
+    root: String,
+    // In this order: the server goes after the session has been closed, the folder after the server.
+    _driver: Driver,
+    folder: Folder,
+}
+
+impl Session {
+    /// Asks the server for a window. `folder` holds the window's profile and downloads and goes with it.
+    pub fn open(driver: Driver, capabilities: &Value, folder: Folder) -> Outcome<Self> {
+        let agent: Agent = Agent::config_builder()
+            .http_status_as_error(false)
+            .timeout_global(Some(Duration::from_secs(120)))
+            .build()
+            .into();
+        let mut session = Self { agent, root: driver.address(), _driver: driver, folder };
+        let answer = session.post("/session", &json!({ "capabilities": { "alwaysMatch": capabilities } }))?;
+        let id = answer["sessionId"].as_str().ok_or("the server gave no session")?;
+        session.root = format!("{}/session/{id}", session.root);
+        Ok(session)
+    }
+
+    /// Folder into which this window downloads.
+    pub fn downloads(&self) -> PathBuf {
+        self.folder.path().join("downloads")
+    }
+
+    fn post(&self, path: &str, body: &Value) -> Outcome<Value> {
+        let url = format!("{}{path}", self.root);
+        let answer = self.agent.post(&url).content_type("application/json").send(body.to_string());
+        value_of(path, answer)
+    }
+
+    fn get(&self, path: &str) -> Outcome<Value> {
+        value_of(path, self.agent.get(format!("{}{path}", self.root)).call())
+    }
+
+    /// Opens an address and waits for the document to be loaded.
+    pub fn go(&self, address: &str) -> Outcome<()> {
+        self.post("/url", &json!({ "url": address })).map(|_| ())
+    }
+
+    /// The first element that a CSS selector finds.
+    pub fn find(&self, selector: &str) -> Outcome<Element> {
+        let found = self.post("/element", &json!({ "using": "css selector", "value": selector }))?;
+        let id = found[ELEMENT].as_str().ok_or_else(|| format!("no reference to {selector}"))?;
+        Ok(Element(id.into()))
+    }
+
+    /// The element that has the focus.
+    pub fn focused(&self) -> Outcome<Element> {
+        let found = self.get("/element/active")?;
+        Ok(Element(found[ELEMENT].as_str().ok_or("nothing has the focus")?.into()))
+    }
+
+    /// A click in the middle of an element, as by a mouse.
+    pub fn click(&self, element: &Element) -> Outcome<()> {
+        self.post(&format!("/element/{}/click", element.0), &json!({})).map(|_| ())
+    }
+
+    /// Keys typed into an element; a path typed into a file field picks that file.
+    pub fn type_keys(&self, element: &Element, text: &str) -> Outcome<()> {
+        self.post(&format!("/element/{}/value", element.0), &json!({ "text": text })).map(|_| ())
+    }
+
+    /// Keys pressed one after the other wherever the focus is, as on a keyboard.
+    pub fn press(&self, keys: &str) -> Outcome<()> {
+        self.strike(keys.chars().flat_map(|key| [stroke("keyDown", key), stroke("keyUp", key)]).collect())
+    }
+
+    /// A key pressed while another is held.
+    pub fn chord(&self, held: char, key: char) -> Outcome<()> {
+        self.strike(vec![stroke("keyDown", held), stroke("keyDown", key), stroke("keyUp", key), stroke("keyUp", held)])
+    }
+
+    fn strike(&self, strokes: Vec<Value>) -> Outcome<()> {
+        let actions = json!({ "actions": [{ "type": "key", "id": "keyboard", "actions": strokes }] });
+        self.post("/actions", &actions).map(|_| ())
+    }
+
+    /// Visible text of an element.
+    pub fn text(&self, element: &Element) -> Outcome<String> {
+        let text = self.get(&format!("/element/{}/text", element.0))?;
+        Ok(text.as_str().unwrap_or_default().into())
+    }
+
+    /// Runs a script's body in the page; `arguments` are its `arguments`, the value it returns comes back.
+    pub fn run(&self, script: &str, arguments: &[Value]) -> Outcome<Value> {
+        self.post("/execute/sync", &json!({ "script": script, "args": arguments }))
+    }
+
+    /// Writes a picture of the window to a file.
+    pub fn picture(&self, file: &Path) -> Outcome<()> {
+        let text = self.get("/screenshot")?;
+        let bytes = STANDARD.decode(text.as_str().unwrap_or_default()).map_err(|why| why.to_string())?;
+        std::fs::write(file, bytes).map_err(|why| format!("{}: {why}", file.display()))
+    }
+
+    /// Sets the size of the window in CSS pixels.
+    pub fn resize(&self, width: u32, height: u32) -> Outcome<()> {
+        self.post("/window/rect", &json!({ "width": width, "height": height })).map(|_| ())
+    }
+}
+
+fn stroke(kind: &str, key: char) -> Value {
+    json!({ "type": kind, "value": key.to_string() })
+}
+
+impl Element {
+    /// The element as an argument of a script.
+    pub fn argument(&self) -> Value {
+        json!({ ELEMENT: self.0 })
+    }
+}
+
+fn value_of(path: &str, answer: Result<ureq::http::Response<ureq::Body>, ureq::Error>) -> Outcome<Value> {
+    let mut answer = answer.map_err(|why| format!("{path}: {why}"))?;
+    let text =
+        answer.body_mut().with_config().limit(1 << 28).read_to_string().map_err(|why| format!("{path}: {why}"))?;
+    let body: Value = serde_json::from_str(&text).map_err(|why| format!("{path}: {why}"))?;
+    let value = body["value"].clone();
+    if answer.status().is_success() {
+        return Ok(value);
+    }
+    Err(format!("{path}: {}: {}", value["error"].as_str().unwrap_or("error"), value["message"].as_str().unwrap_or("")))
+}
+
+impl Drop for Session {
+    fn drop(&mut self) {
+        let _ = self.agent.delete(&self.root).call();
+    }
+}

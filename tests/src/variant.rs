@@ -1,0 +1,79 @@
+//! Changed copies of the delivered page, for checks of what happens when something in it goes wrong.
+use crate::folder::Folder;
+use crate::place::dist_file;
+use base64::Engine;
+use base64::engine::general_purpose::STANDARD;
+use sha2::{Digest, Sha256};
+use std::path::PathBuf;
+
+/// The text of the page with changes made to it.
+pub struct Variant(String);
+
+impl Variant {
+    /// The page as it was built.
+    pub fn delivered() -> Self {
+        Self(std::fs::read_to_string(dist_file("inward.html")).expect("the page is text"))
+    }
+
+    /// The text.
+    pub fn text(&self) -> &str {
+        &self.0
+    }
+
+    /// Puts script text in front of the workers' script.
+    pub fn before_worker(self, script: &str) -> Self {
+        self.after(&["<script", "id=\"worker\"", ">"], script)
+    }
+
+    /// Adds script text to the page's own script and admits the longer script in the policy.
+    pub fn with_script(self, added: &str) -> Self {
+        let start = self.page_script_start();
+        let end = start + self.0[start..].find("</script>").expect("the page's script ends");
+        let old = &self.0[start..end];
+        let new = format!("{old}\n{added}\n");
+        let (before, after) = (hash(old), hash(&new));
+        assert!(self.0.contains(&before), "the policy admits the page's script by its hash");
+        let text = format!("{}{new}{}", &self.0[..start], &self.0[end..]);
+        Self(text.replace(&before, &after))
+    }
+
+    /// Changes the page's own script without telling the policy.
+    pub fn with_unannounced_script(self) -> Self {
+        let start = self.page_script_start();
+        Self(format!("{}\n//\n{}", &self.0[..start], &self.0[start..]))
+    }
+
+    /// Takes the policy away.
+    pub fn without_policy(self) -> Self {
+        let start = self.0.find("<meta http-equiv=\"Content-Security-Policy\"").expect("the page holds a policy");
+        let end = start + self.0[start..].find('>').expect("a tag ends") + 1;
+        Self(format!("{}{}", &self.0[..start], &self.0[end..]))
+    }
+
+    /// Writes the page into a folder and returns its path.
+    pub fn write(&self, folder: &Folder) -> PathBuf {
+        folder.write("inward.html", &self.0)
+    }
+
+    /// The page's own script is the last one; those before it carry data.
+    fn page_script_start(&self) -> usize {
+        let tag = self.0.rfind("<script").expect("the page has a script");
+        tag + self.0[tag..].find('>').expect("a tag ends") + 1
+    }
+
+    fn after(self, marks: &[&str], added: &str) -> Self {
+        let tag = self
+            .0
+            .match_indices(marks[0])
+            .map(|(at, _)| at)
+            .find(|&at| self.0[at..].split_once(marks[2]).is_some_and(|(tag, _)| tag.contains(marks[1])))
+            .expect("the page has that script");
+        let at = tag + self.0[tag..].find(marks[2]).expect("a tag ends") + marks[2].len();
+        Self(format!("{}\n{added}\n{}", &self.0[..at], &self.0[at..]))
+    }
+}
+
+/// A script's hash as a policy writes it.
+fn hash(script: &str) -> String {
+    format!("sha256-{}", STANDARD.encode(Sha256::digest(script.as_bytes())))
+}
