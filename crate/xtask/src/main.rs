@@ -1,16 +1,26 @@
 //! The build tool: `cargo xtask build | serve | test | bench`.
 
+mod bench;
 mod bundle;
+mod digits;
 mod dist;
 mod engine;
 mod lexer;
+mod licences;
 mod notices;
 mod page;
+mod paths;
+mod reproduce;
+mod rules;
+mod sealed;
+mod serve;
 mod stamp;
+mod steps;
+mod tools;
 mod wasm;
 mod workspace;
 
-use anyhow::{Result, bail};
+use anyhow::{Context, Result, bail};
 use std::path::PathBuf;
 use std::process::ExitCode;
 use workspace::Workspace;
@@ -42,6 +52,21 @@ fn run() -> Result<()> {
         Some("build") => {
             arguments.finish()?;
             dist::build(&workspace)?;
+        }
+        Some("serve") => {
+            let port = arguments.value("--port")?.map_or(Ok(8000), |port| port.parse()).context("--port")?;
+            arguments.finish()?;
+            let dist = dist::build(&workspace)?;
+            serve::serve(&workspace, dist, port)?;
+        }
+        Some("test") => {
+            let install = arguments.flag("--install");
+            arguments.finish()?;
+            steps::test(&workspace, install)?;
+        }
+        Some("bench") => {
+            arguments.finish()?;
+            bench::bench(&workspace)?;
         }
         _ => bail!("what shall be done?\n\n{USAGE}"),
     }

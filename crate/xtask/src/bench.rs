@@ -1,0 +1,16 @@
+//! The engine timed, natively and in Node.
+
+use crate::dist::build;
+use crate::tools::Tools;
+use crate::workspace::{Workspace, run};
+use anyhow::{Context, Result};
+
+/// Runs the core's example `bench` and the same work through the module.
+pub fn bench(workspace: &Workspace) -> Result<()> {
+    build(workspace)?;
+    println!("\nnative");
+    run(workspace.cargo().args(["run", "--release", "--locked", "--package=inward-core", "--example=bench"]))?;
+    println!("\nNode");
+    let node = Tools::find(workspace).node.context("Node 20 or later is needed; INWARD_NODE may name it")?;
+    run(workspace.command(node).arg("tests/bench.mjs").env("INWARD_DIST", &workspace.dist))
+}
