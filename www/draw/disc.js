@@ -7,8 +7,10 @@ import { openCanvas } from "./canvas.js";
 import { colourOfShare, colourTable, cssColour } from "./scale.js";
 
 const TABLE_STEPS = 511;
-/** Share of half the canvas that the unit disc takes; the rest is for the letters around it. */
-const DISC_SHARE = 0.86;
+/** CSS pixels around the disc for the letters. */
+const MARGIN = 20;
+/** CSS pixels from an electrode to its label. */
+const LABEL_DISTANCE = 12;
 
 /**
  * @typedef {object} DiscContent
@@ -81,16 +83,6 @@ function tracePoints(pen, points, closed) {
   if (closed) pen.closePath();
 }
 
-/** Text with a halo of paper, readable on any value. @param {CanvasRenderingContext2D} pen @param {string} text @param {number} x @param {number} y @param {import("./canvas.js").Surroundings} around */
-function writeHaloed(pen, text, x, y, around) {
-  pen.lineWidth = 3;
-  pen.lineJoin = "round";
-  pen.strokeStyle = around.paper;
-  pen.strokeText(text, x, y);
-  pen.fillStyle = around.ink;
-  pen.fillText(text, x, y);
-}
-
 /**
  * @param {HTMLCanvasElement} canvas
  * @param {DiscContent} content
@@ -101,23 +93,14 @@ export function paintDisc(canvas, content, around) {
   if (opened === null) return;
   const { pen, width, height } = opened;
   const { picture, role } = content;
-  const unit = (Math.min(width, height) / 2) * DISC_SHARE;
+  const edge = Math.max(...picture.rings.map((ring) => ring.radius), 0.5);
+  const unit = Math.max(1, Math.min(width, height) / 2 - MARGIN) / edge;
   const limit = role === "residual" ? picture.limit / picture.stretch : picture.limit;
   const pixel = 1 / unit;
 
   pen.save();
   pen.translate(width / 2, height / 2);
   pen.scale(unit, unit);
-
-  pen.strokeStyle = around.ink;
-  pen.globalAlpha = 0.22;
-  pen.lineWidth = pixel;
-  for (const ring of picture.rings) {
-    pen.beginPath();
-    pen.arc(0, 0, ring.radius, 0, 2 * Math.PI);
-    pen.stroke();
-  }
-  pen.globalAlpha = 1;
 
   pen.save();
   tracePoints(pen, picture.outline, true);
@@ -139,7 +122,13 @@ export function paintDisc(canvas, content, around) {
 
   pen.lineWidth = pixel;
   pen.strokeStyle = around.ink;
-  pen.globalAlpha = 0.55;
+  for (const ring of picture.rings) {
+    pen.globalAlpha = ring.radius === edge ? 0.45 : 0.13;
+    pen.beginPath();
+    pen.arc(0, 0, ring.radius, 0, 2 * Math.PI);
+    pen.stroke();
+  }
+  pen.globalAlpha = 0.3;
   tracePoints(pen, picture.outline, true);
   pen.stroke();
   pen.globalAlpha = 1;
@@ -147,10 +136,15 @@ export function paintDisc(canvas, content, around) {
   if (content.dipole) paintDipole(pen, picture.dipole, pixel, around);
   pen.restore();
 
-  paintLetters(pen, width, height, unit, content, around);
+  paintLetters(pen, width / 2, height / 2, unit, edge, content, around);
 }
 
-/** @param {CanvasRenderingContext2D} pen @param {Picture} picture @param {number} pixel @param {import("./canvas.js").Surroundings} around */
+/**
+ * @param {CanvasRenderingContext2D} pen
+ * @param {Picture} picture
+ * @param {number} pixel
+ * @param {import("./canvas.js").Surroundings} around
+ */
 function paintElectrodes(pen, picture, pixel, around) {
   pen.fillStyle = around.ink;
   pen.strokeStyle = around.ink;
@@ -163,60 +157,85 @@ function paintElectrodes(pen, picture, pixel, around) {
   }
 }
 
-/** An axis, not an arrow: a component's sign is arbitrary. @param {CanvasRenderingContext2D} pen @param {Picture["dipole"]} dipole @param {number} pixel @param {import("./canvas.js").Surroundings} around */
+/**
+ * An axis, not an arrow: a component's sign is arbitrary.
+ * @param {CanvasRenderingContext2D} pen
+ * @param {Picture["dipole"]} dipole
+ * @param {number} pixel
+ * @param {import("./canvas.js").Surroundings} around
+ */
 function paintDipole(pen, dipole, pixel, around) {
-  const half = 22 * pixel;
-  for (const [colour, extra] of /** @type {const} */ ([[around.paper, 3], [around.ink, 0]])) {
+  const half = 20 * pixel;
+  pen.lineCap = "round";
+  for (const [colour, halo] of /** @type {const} */ ([[around.paper, 1.5], [around.ink, 0]])) {
     pen.strokeStyle = colour;
     pen.fillStyle = colour;
-    pen.lineWidth = (2 + extra) * pixel;
-    pen.lineCap = "round";
+    pen.lineWidth = (2 + 2 * halo) * pixel;
     pen.beginPath();
     pen.moveTo(dipole.x - half * dipole.dx, -dipole.y + half * dipole.dy);
     pen.lineTo(dipole.x + half * dipole.dx, -dipole.y - half * dipole.dy);
     pen.stroke();
     pen.beginPath();
-    pen.arc(dipole.x, -dipole.y, (4 + extra / 2) * pixel, 0, 2 * Math.PI);
+    pen.arc(dipole.x, -dipole.y, (4 + halo) * pixel, 0, 2 * Math.PI);
     pen.fill();
   }
 }
 
 /**
+ * Text with a halo of paper, readable on any value.
  * @param {CanvasRenderingContext2D} pen
- * @param {number} width
- * @param {number} height
+ * @param {string} text
+ * @param {number} x
+ * @param {number} y
+ * @param {import("./canvas.js").Surroundings} around
+ */
+function writeHaloed(pen, text, x, y, around) {
+  pen.lineWidth = 3;
+  pen.lineJoin = "round";
+  pen.strokeStyle = around.paper;
+  pen.strokeText(text, x, y);
+  pen.fillStyle = around.ink;
+  pen.fillText(text, x, y);
+}
+
+/**
+ * Labels of the largest and smallest value, and the signs around the disc.
+ * @param {CanvasRenderingContext2D} pen
+ * @param {number} middle of the canvas, across
+ * @param {number} centre of the canvas, down
  * @param {number} unit
+ * @param {number} edge
  * @param {DiscContent} content
  * @param {import("./canvas.js").Surroundings} around
  */
-function paintLetters(pen, width, height, unit, content, around) {
+function paintLetters(pen, middle, centre, unit, edge, content, around) {
   const { words, picture, role } = content;
-  const middle = width / 2;
-  const centre = height / 2;
   pen.font = `11px ${around.font}`;
   pen.textAlign = "center";
   pen.textBaseline = "middle";
   for (const [key, sign] of /** @type {const} */ ([["max", "+"], ["min", "\u2212"]])) {
     const electrode = picture.electrodes[picture.extremes[role][key]];
     if (electrode === undefined) continue;
-    const x = middle + unit * electrode.x;
-    const y = centre - unit * electrode.y;
-    writeHaloed(pen, `${sign} ${electrode.label}`, x, y < centre ? y + 11 : y - 11, around);
+    // The label keeps out of the way of the dipole, and inside the disc otherwise.
+    const upwards = content.dipole ? electrode.y >= picture.dipole.y : electrode.y < 0;
+    const distance = content.dipole ? LABEL_DISTANCE + 4 : LABEL_DISTANCE;
+    const y = centre - unit * electrode.y + (upwards ? -distance : distance);
+    writeHaloed(pen, `${sign}\u2009${electrode.label}`, middle + unit * electrode.x, y, around);
   }
-  const edge = Math.max(1, ...picture.rings.map((ring) => ring.radius));
+  const reach = unit * edge;
   pen.strokeStyle = around.ink;
   pen.lineWidth = 1.5;
   pen.beginPath();
-  pen.moveTo(middle, centre - unit * edge);
-  pen.lineTo(middle, centre - unit * edge - 5);
+  pen.moveTo(middle, centre - reach);
+  pen.lineTo(middle, centre - reach - 5);
   pen.stroke();
   pen.fillStyle = around.ink;
-  pen.fillText(words.front, middle, centre - unit * edge - 11);
-  pen.fillText(words.left, middle - unit * edge - 9, centre);
-  pen.fillText(words.right, middle + unit * edge + 9, centre);
-  pen.fillText(words.above, middle, centre + unit * edge + 10);
+  pen.fillText(words.front, middle, centre - reach - 12);
+  pen.fillText(words.left, middle - reach - 10, centre);
+  pen.fillText(words.right, middle + reach + 10, centre);
+  pen.fillText(words.above, middle, centre + reach + 11);
   if (content.stretched !== "") {
     pen.textAlign = "right";
-    pen.fillText(content.stretched, width - 1, 8);
+    pen.fillText(content.stretched, middle + reach, centre - reach + 2);
   }
 }

@@ -8,7 +8,7 @@ const WORDS = {
   "skip": "Skip to the answer",
 
   "empty.what": "Does one equivalent dipole explain this scalp map, where would it lie, and what is left over?",
-  "empty.how": "Give a table of a map on the left: paste it, drop it anywhere, or pick a file. The answer comes by itself.",
+  "empty.how": "Give a map as a table: paste it, drop it anywhere on this page, or pick a file. The answer comes by itself.",
   "empty.private": "Everything is computed in this tab. Nothing is sent, stored or looked up.",
   "empty.maps": "A map: label and value, one electrode a line; further columns are further maps",
   "empty.electrodes": "Electrode positions, if measured: label, x, y, z",
@@ -24,6 +24,7 @@ const WORDS = {
   "clear": "Clear",
   "unit": "Unit of the map",
   "unit.relative": "relative",
+  "unit.none": "(relative)",
   "unit.uV": "µV",
   "unit.V": "V",
   "slot.none": "none yet",
@@ -40,7 +41,7 @@ const WORDS = {
   "state.ready": "Ready for a map",
   "state.waiting": "Electrodes are in; now the map",
   "state.busy": "Computing",
-  "state.answered": "Answer below",
+  "state.answered": "Answered",
   "state.failed": "That did not work",
   "state.stopped": "Stopped",
   "cancel": "Stop",
@@ -104,7 +105,7 @@ export function progressText(done, total) {
 
 /** @param {MapUnit} unit */
 export function unitText(unit) {
-  return word(`unit.${unit}`);
+  return word(unit === "relative" ? "unit.none" : `unit.${unit}`);
 }
 
 /** Writes the page's own sentences where the template names their codes. @param {ParentNode} root */

@@ -26,6 +26,7 @@ export function showFailure(session) {
       need("failure-where", HTMLElement).hidden = where === "";
       need("failure-hint", HTMLElement).textContent = failure?.hint ?? "";
       need("failure-kept", HTMLElement).hidden = state.answer === null;
+      if (failure !== null && !(document.activeElement instanceof HTMLTextAreaElement)) panel.scrollIntoView({ block: "nearest" });
       details.textContent = failure === null ? "" : detailsText(failure, state.program);
     },
   );

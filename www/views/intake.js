@@ -83,8 +83,14 @@ function showUnit(session) {
   });
 }
 
-/** @param {import("../session/session.js").Session} session */
+/**
+ * Folds the column when an answer has come, but never under the hands of someone who types; opens it when the input
+ * has to be mended.
+ * @param {import("../session/session.js").Session} session
+ */
 function showFolding(session) {
+  const intake = need("intake", HTMLElement);
+  let typing = false;
   const sheet = need("sheet", HTMLElement);
   const fold = need("fold", HTMLButtonElement);
 
@@ -97,15 +103,28 @@ function showFolding(session) {
     fold.textContent = word(folded ? "intake.change" : "intake.fold");
   };
   fold.addEventListener("click", () => setFolded(!sheet.hasAttribute("data-folded")));
+  intake.addEventListener("input", (event) => {
+    typing = event instanceof InputEvent && event.inputType !== "insertFromPaste";
+  });
+  intake.addEventListener("focusout", () => {
+    typing = false;
+  });
 
   session.watch(
     (state) => state.answer?.key,
     (key) => {
       fold.hidden = key === undefined;
-      // Nobody who is writing in the column has it folded away under their hands.
-      const writing = need("intake", HTMLElement).contains(document.activeElement);
       if (key === undefined) setFolded(false);
-      else if (!writing) setFolded(true);
+      if (key === undefined || typing) return;
+      const within = intake.contains(document.activeElement);
+      setFolded(true);
+      if (within) fold.focus();
+    },
+  );
+  session.watch(
+    (state) => state.failure,
+    (failure) => {
+      if (failure !== null) setFolded(false);
     },
   );
 }

@@ -35,6 +35,7 @@ export function showStatus(session) {
       // Counts change many times a second; a screen reader hears of the beginning and the end.
       status.setAttribute("aria-live", state.progress === null ? "polite" : "off");
       if (status.textContent !== text) status.textContent = text;
+      status.classList.toggle("unseen", state.phase === "answered" && !working && !state.stopped);
       cancel.hidden = !working;
       progress.hidden = !working;
       if (state.progress === null) progress.removeAttribute("value");
