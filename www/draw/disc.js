@@ -216,8 +216,9 @@ function paintLetters(pen, middle, centre, unit, edge, content, around) {
   for (const [key, sign] of /** @type {const} */ ([["max", "+"], ["min", "\u2212"]])) {
     const electrode = picture.electrodes[picture.extremes[role][key]];
     if (electrode === undefined) continue;
-    // The label keeps out of the way of the dipole, and inside the disc otherwise.
-    const upwards = content.dipole ? electrode.y >= picture.dipole.y : electrode.y < 0;
+    // The label keeps out of the way of the dipole and inside the disc, and leaves the middle free.
+    const above = content.dipole ? electrode.y >= picture.dipole.y : electrode.y >= 0;
+    const upwards = Math.hypot(electrode.x, electrode.y) > 0.8 * edge ? electrode.y < 0 : above;
     const distance = content.dipole ? LABEL_DISTANCE + 4 : LABEL_DISTANCE;
     const y = centre - unit * electrode.y + (upwards ? -distance : distance);
     writeHaloed(pen, `${sign}\u2009${electrode.label}`, middle + unit * electrode.x, y, around);

@@ -6,12 +6,12 @@
  * its sign is left to the contour lines. The middle is near the paper, in dark surroundings near black.
  */
 
-const HUE_NEGATIVE = 215;
+const HUE_NEGATIVE = 217;
 const HUE_POSITIVE = 58;
-const END_CHROMA = 0.098;
-const MIDDLE = { light: 0.965, dark: 0.27 };
-const END = { light: 0.47, dark: 0.8 };
-const MIDDLE_CHROMA = 0.004;
+const MIDDLE_LIGHTNESS = { light: 0.97, dark: 0.27 };
+const END_LIGHTNESS = { light: 0.47, dark: 0.8 };
+/** The most that sRGB reaches at the ends in both hues. */
+const END_CHROMA = { light: 0.083, dark: 0.098 };
 
 /** @typedef {"light" | "dark"} Theme */
 
@@ -48,8 +48,8 @@ export function linearOfOklch(lightness, chroma, hue) {
 export function oklchOfShare(share, theme, shift = 0) {
   const size = Math.min(1, Math.abs(share));
   return {
-    lightness: MIDDLE[theme] + (END[theme] - MIDDLE[theme]) * size + shift,
-    chroma: MIDDLE_CHROMA + (END_CHROMA - MIDDLE_CHROMA) * size,
+    lightness: MIDDLE_LIGHTNESS[theme] + (END_LIGHTNESS[theme] - MIDDLE_LIGHTNESS[theme]) * size + shift,
+    chroma: END_CHROMA[theme] * size,
     hue: share < 0 ? HUE_NEGATIVE : HUE_POSITIVE,
   };
 }

@@ -30,6 +30,7 @@ const WORDS = {
   "slot.none": "none yet",
   "slot.standard": "standard positions",
   "slot.pasted": "pasted",
+  "slot.pasted-electrodes": "pasted electrodes",
   "slot.large": "This file is too long to show here.",
   "slot.maps-misplaced": "This reads like an electrode table.",
   "slot.electrodes-misplaced": "This reads like a map.",
@@ -62,7 +63,8 @@ const WORDS = {
   "map.left": "L",
   "map.right": "R",
   "map.above": "seen from above",
-  "scale.words": "One scale for all three. Lines: solid positive, dashed negative.",
+  "scale.shared": "One scale for all three",
+  "scale.lines": "Lines: solid positive, dashed negative",
 
   "numbers": "Numbers",
   "numbers.quantity": "Quantity",
@@ -86,7 +88,6 @@ const WORDS = {
   "failure.details": "Details to copy",
   "failure.copy": "Copy details",
   "failure.dismiss": "Close",
-  "failure.kept": "The previous answer is still shown below.",
 
   "notices": "Licences of what is built in",
 };
@@ -101,6 +102,24 @@ export function word(code) {
 /** @param {number} done @param {number} total */
 export function progressText(done, total) {
   return `${done.toLocaleString("en-GB")} of ${total.toLocaleString("en-GB")} maps fitted`;
+}
+
+/** @param {string} subject what the answer is for */
+export function keptText(subject) {
+  return `The previous answer (${subject}) is still shown below.`;
+}
+
+/** Which map of which inputs. @param {Answer} answer */
+export function subjectText({ names, maps, chosen }) {
+  const map = names.maps || word("slot.pasted");
+  const electrodes = names.electrodes === null ? word("slot.standard") : names.electrodes || word("slot.pasted-electrodes");
+  return [maps[chosen]?.name, map, electrodes].filter((part) => part).join(" · ");
+}
+
+/** @param {string} stretch the left-over map's own factor, or empty */
+export function scaleText(stretch) {
+  const shared = stretch === "" ? word("scale.shared") : `${word("scale.shared")}; ${word("map.residual")} drawn ${stretch}`;
+  return `${shared}. ${word("scale.lines")}.`;
 }
 
 /** @param {MapUnit} unit */

@@ -1,5 +1,6 @@
 /** The answer in a sentence, first and largest, and the frame around everything that belongs to it. */
 
+import { subjectText } from "../text/words.js";
 import { make, need } from "./element.js";
 
 /** The first sentence is the answer; what follows explains it and is set smaller. @param {string} text */
@@ -25,6 +26,7 @@ export function showAnswer(session) {
       need("answer", HTMLElement).hidden = answer === null;
       need("fitted", HTMLElement).hidden = !sheet;
       if (answer === null) return;
+      need("subject", HTMLElement).textContent = subjectText(answer);
       const map = answer.maps[answer.chosen];
       const text = sheet?.sentence ?? (map !== undefined && "error" in map ? `${map.name}: ${map.error.message}` : "");
       sentence.replaceChildren(...splitSentence(text).map((part, at) => make("span", part, { class: at === 0 ? "first" : "rest" })));

@@ -2,6 +2,7 @@
 
 import { copyText } from "../export/out.js";
 import { detailsText, placeText } from "../text/faults.js";
+import { keptText, subjectText } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { need } from "./element.js";
 
@@ -25,7 +26,9 @@ export function showFailure(session) {
       need("failure-where", HTMLElement).textContent = where;
       need("failure-where", HTMLElement).hidden = where === "";
       need("failure-hint", HTMLElement).textContent = failure?.hint ?? "";
-      need("failure-kept", HTMLElement).hidden = state.answer === null;
+      const kept = need("failure-kept", HTMLElement);
+      kept.hidden = state.answer === null;
+      kept.textContent = state.answer === null ? "" : keptText(subjectText(state.answer));
       if (failure !== null && !(document.activeElement instanceof HTMLTextAreaElement)) panel.scrollIntoView({ block: "nearest" });
       details.textContent = failure === null ? "" : detailsText(failure, state.program);
     },

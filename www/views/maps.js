@@ -4,7 +4,7 @@ import { paintBar } from "../draw/bar.js";
 import { surroundingsOf } from "../draw/canvas.js";
 import { paintDisc } from "../draw/disc.js";
 import { limitText, stretchText } from "../text/figures.js";
-import { unitText, word } from "../text/words.js";
+import { scaleText, unitText, word } from "../text/words.js";
 import { need } from "./element.js";
 
 /** @type {MapRole[]} */
@@ -36,7 +36,9 @@ export function showMaps(session) {
       const unit = unitText(state.answer?.preamble.settings.mapUnit ?? "relative");
       need("scale-low", HTMLElement).textContent = limitText(-picture.limit);
       need("scale-high", HTMLElement).textContent = `${limitText(picture.limit)} ${unit}`;
-      need("stretch", HTMLElement).textContent = picture.stretch === 1 ? "" : stretchText(picture.stretch);
+      const stretched = picture.stretch === 1 ? "" : stretchText(picture.stretch);
+      need("stretch", HTMLElement).textContent = stretched;
+      need("scale-words", HTMLElement).textContent = scaleText(stretched);
       paint();
     },
   );
