@@ -1,1 +1,329 @@
-//! x
+//! The whole way of a table of maps in one call.
+
+use crate::assess::{adjusted_residual_variance, degrees_of_freedom};
+use crate::electrode::{Label, nearest_site};
+use crate::finding::{Code, Error, Finding, Place};
+use crate::fit::{BATCH, Fit, Fitter, Stopped};
+use crate::forward::LeadField;
+use crate::head::Shells;
+use crate::map::{MapUnit, Maps, average_referenced};
+use crate::math::mean;
+use crate::placement::{Placement, Wishes, place};
+use crate::read::{read_electrodes, read_maps};
+use crate::report::{
+    Assessment, DipoleReport, ElectrodeReport, FittedMap, HeadReport, Input, MapReport, Note, Program, Report,
+    SearchReport, Settings, Sheet, Site,
+};
+use crate::scene::{Picture, PictureElectrode, Spline};
+use sha2::{Digest, Sha256};
+
+/// What to analyse.
+#[derive(Clone, Debug, Default)]
+pub struct Request<'a> {
+    /// Content of a table of electrodes; `None` for standard positions by the labels of the maps.
+    pub electrodes: Option<&'a [u8]>,
+    /// Content of a table of maps.
+    pub maps: &'a [u8],
+    /// Choices.
+    pub settings: Settings,
+    /// Short hash of the engine's sources, for the report.
+    pub build: Option<&'static str>,
+}
+
+/// Reads, places, fits every map and reports.
+///
+/// # Errors
+/// Any of [`Study::open`]; if no map can be fitted, the error of the first one.
+pub fn analyse(request: &Request) -> Result<Report, Error> {
+    let study = Study::open(request)?;
+    let maps = study.fit_all()?;
+    Ok(Report { maps, ..study.preamble() })
+}
+
+/// A table of maps, read and prepared once; maps are fitted one by one when asked for.
+#[derive(Clone, Debug)]
+pub struct Study {
+    inputs: Vec<Input>,
+    settings: Settings,
+    build: Option<&'static str>,
+    maps: Maps,
+    placement: Placement,
+    shells: Shells,
+    fitter: Fitter,
+    notes: Vec<Finding>,
+}
+
+impl Study {
+    /// Reads the inputs, places the electrodes on the head and prepares the search.
+    ///
+    /// # Errors
+    /// Any of [`read_electrodes`], [`read_maps`], [`place`] and [`Shells::new`].
+    pub fn open(request: &Request) -> Result<Self, Error> {
+        let maps = read_maps(request.maps)?;
+        let table = request.electrodes.map(read_electrodes).transpose()?;
+        let settings = request.settings.clone();
+        let head = settings.head.clone().unwrap_or_default();
+        let shells = head.shells.map_or_else(|| Ok(Shells::standard()), Shells::new)?;
+        let wishes = Wishes {
+            exclude: settings.exclude.iter().map(|label| Label::new(label)).collect(),
+            centre_mm: head.centre_mm,
+            radius_mm: head.radius_mm,
+        };
+        let placement = place(table.as_deref(), &maps, &wishes)?;
+        let radius = placement.sphere.sphere.radius;
+        let fitter = Fitter::new(LeadField::new(&shells, radius, placement.directions()));
+        let inputs = request.electrodes.map(|bytes| ("electrodes", bytes)).into_iter().chain([("maps", request.maps)]);
+        let mut study = Self {
+            inputs: inputs.map(|(name, bytes)| Input { name, sha256: sha256(bytes) }).collect(),
+            notes: placement.notes.clone(),
+            build: request.build,
+            settings,
+            maps,
+            placement,
+            shells,
+            fitter,
+        };
+        study.note_the_rest();
+        Ok(study)
+    }
+
+    /// Number of maps.
+    pub fn count(&self) -> usize {
+        self.maps.names.len()
+    }
+
+    /// The head of all fits.
+    pub fn head(&self) -> HeadReport {
+        let fit = self.placement.sphere;
+        HeadReport {
+            centre_mm: fit.sphere.centre,
+            radius_mm: fit.sphere.radius,
+            fit_rms_mm: fit.rms,
+            fit_max_mm: fit.max,
+            shells: self.shells.sized(fit.sphere.radius),
+        }
+    }
+
+    /// Electrodes with position and value.
+    pub fn electrodes(&self) -> Vec<ElectrodeReport> {
+        self.placement
+            .electrodes
+            .iter()
+            .map(|e| ElectrodeReport { label: e.label.to_string(), position_mm: e.position_mm, used: e.used })
+            .collect()
+    }
+
+    /// What was assumed and what did not match.
+    pub fn notes(&self) -> Vec<Note> {
+        self.notes.iter().map(Note::from).collect()
+    }
+
+    /// The report without its maps.
+    pub fn preamble(&self) -> Report {
+        Report {
+            format: "inward-report",
+            version: 1,
+            program: Program { name: "Inward", version: env!("CARGO_PKG_VERSION"), build: self.build },
+            inputs: self.inputs.clone(),
+            settings: self.settings.clone(),
+            head: self.head(),
+            electrodes: self.electrodes(),
+            maps: Vec::new(),
+            notes: self.notes(),
+        }
+    }
+
+    /// Fits one map, counted from 0.
+    ///
+    /// # Errors
+    /// `map-index`. A map that cannot be fitted is no error: its report says why.
+    pub fn fit(&self, index: usize) -> Result<MapReport, Error> {
+        if index >= self.count() {
+            return Err(Finding::new(Code::MapIndex)
+                .at(Place::input("maps"))
+                .with("index", index)
+                .with("count", self.count())
+                .into());
+        }
+        Ok(match self.values(index) {
+            Ok(map) => match self.fitter.fit(&map) {
+                Some(fit) => self.reported(index, &map, &fit),
+                None => self.failed(index, &self.constant(index)),
+            },
+            Err(error) => self.failed(index, &error),
+        })
+    }
+
+    /// Adds what `what` names to the fit of one map: nothing can be named yet.
+    ///
+    /// # Errors
+    /// Those of [`Self::fit`].
+    pub fn assess(&self, index: usize, _what: &[Assessment]) -> Result<MapReport, Error> {
+        self.fit(index)
+    }
+
+    /// The answer for one fitted map in words and numbers.
+    pub fn sheet(&self, map: &FittedMap) -> Sheet {
+        let labels: Vec<String> = self.placement.used().map(|e| e.label.to_string()).collect();
+        let sites: Vec<Site> = labels
+            .iter()
+            .zip(self.fitter.field().directions())
+            .map(|(label, &direction)| Site { label, direction })
+            .collect();
+        Sheet::new(map, &self.head(), &sites, self.settings.map_unit)
+    }
+
+    /// The picture of one fitted map; `None` if the electrodes cannot carry an interpolation.
+    pub fn picture(&self, map: &FittedMap) -> Option<Picture> {
+        let spline = Spline::new(self.fitter.field().directions().to_vec())?;
+        let centre = self.placement.sphere.sphere.centre;
+        let electrodes = self
+            .placement
+            .electrodes
+            .iter()
+            .map(|e| PictureElectrode {
+                label: e.label.to_string(),
+                direction: (e.position_mm - centre).unit().unwrap_or_default(),
+                used: e.used,
+            })
+            .collect();
+        let layers = [&map.measured[..], &map.projected, &map.residual];
+        Some(Picture::new(&spline, electrodes, layers, map.dipole.canonical_mm, map.dipole.direction))
+    }
+
+    fn fit_all(&self) -> Result<Vec<MapReport>, Error> {
+        let values: Vec<Result<Vec<f64>, Error>> = (0..self.count()).map(|index| self.values(index)).collect();
+        let readable: Vec<(usize, &[f64])> = values
+            .iter()
+            .enumerate()
+            .filter_map(|(index, map)| map.as_ref().ok().map(|map| (index, map.as_slice())))
+            .collect();
+        let mut fits: Vec<Option<Fit>> = vec![None; self.count()];
+        for batch in readable.chunks(BATCH) {
+            let maps: Vec<&[f64]> = batch.iter().map(|(_, map)| *map).collect();
+            for ((index, _), fit) in batch.iter().zip(self.fitter.fit_batch(&maps)) {
+                fits[*index] = fit;
+            }
+        }
+        let mut first_error = None;
+        let mut any = false;
+        let mut reports = Vec::with_capacity(self.count());
+        for (index, (map, fit)) in values.into_iter().zip(fits).enumerate() {
+            let error = match (map, fit) {
+                (Ok(map), Some(fit)) => {
+                    any = true;
+                    reports.push(self.reported(index, &map, &fit));
+                    continue;
+                }
+                (Ok(_), None) => self.constant(index),
+                (Err(error), _) => error,
+            };
+            reports.push(self.failed(index, &error));
+            first_error.get_or_insert(error);
+        }
+        match first_error {
+            Some(error) if !any => Err(error),
+            _ => Ok(reports),
+        }
+    }
+
+    /// Values of a map at the used electrodes, in its unit.
+    fn values(&self, index: usize) -> Result<Vec<f64>, Error> {
+        let column = self.maps.values.column(index);
+        let values: Vec<f64> = self.placement.used().map(|e| column[e.row]).collect();
+        let missing: Vec<String> = self
+            .placement
+            .used()
+            .zip(&values)
+            .filter(|(_, value)| value.is_nan())
+            .map(|(electrode, _)| electrode.label.to_string())
+            .collect();
+        if missing.is_empty() {
+            return Ok(values);
+        }
+        let name = &self.maps.names[index];
+        let place = Place { label: missing.first().cloned(), map: Some(name.clone()), ..Place::input("maps") };
+        Err(Finding::new(Code::MapIncomplete).at(place).with("map", name.as_str()).with("labels", missing).into())
+    }
+
+    fn constant(&self, index: usize) -> Error {
+        let name = &self.maps.names[index];
+        let place = Place { map: Some(name.clone()), ..Place::input("maps") };
+        Finding::new(Code::MapConstant).at(place).with("map", name.as_str()).into()
+    }
+
+    fn failed(&self, index: usize, error: &Error) -> MapReport {
+        MapReport::Failed { name: self.maps.names[index].clone(), error: Box::new(error.into()) }
+    }
+
+    fn reported(&self, index: usize, map: &[f64], fit: &Fit) -> MapReport {
+        let measured = average_referenced(map);
+        let projected = self.fitter.project(fit.position, fit.moment);
+        let residual = measured.iter().zip(&projected).map(|(d, p)| d - p).collect();
+        MapReport::Fitted(Box::new(FittedMap {
+            name: self.maps.names[index].clone(),
+            residual_variance: fit.residual_variance,
+            variance_explained: 1.0 - fit.residual_variance,
+            adjusted_rv: adjusted_residual_variance(fit.residual_variance, map.len()),
+            degrees_of_freedom: degrees_of_freedom(map.len()),
+            dipole: self.dipole(fit),
+            fit: SearchReport { stopped_because: fit.stopped, evaluations: fit.evaluations },
+            measured,
+            projected,
+            residual,
+        }))
+    }
+
+    fn dipole(&self, fit: &Fit) -> DipoleReport {
+        /// Half the width of the midline.
+        const MIDLINE_MM: f64 = 5.0;
+        let sphere = self.placement.sphere.sphere;
+        let canonical_mm = fit.position * sphere.radius;
+        let distance = canonical_mm.norm();
+        let direction = fit.moment.unit().unwrap_or_default();
+        let unit = self.settings.map_unit;
+        DipoleReport {
+            position_mm: sphere.centre + canonical_mm,
+            canonical_mm,
+            nearest_site: nearest_site(canonical_mm),
+            side: match canonical_mm[0] {
+                x if x > MIDLINE_MM => "right",
+                x if x < -MIDLINE_MM => "left",
+                _ => "midline",
+            },
+            direction,
+            strength: fit.moment.norm() * unit.microvolts(),
+            strength_unit: if unit == MapUnit::Relative { "relative" } else { "nAm" },
+            eccentricity: fit.position.norm() / self.shells.brain_ratio(),
+            depth_mm: self.shells.inner_skull_ratio() * sphere.radius - distance,
+            radial_share: canonical_mm.unit().map(|radial| {
+                let along: f64 = direction.dot(radial);
+                along * along
+            }),
+            at_boundary: fit.stopped == Stopped::Boundary,
+        }
+    }
+
+    fn note_the_rest(&mut self) {
+        let referenced = (0..self.count())
+            .filter_map(|index| self.values(index).ok())
+            .filter(|map| {
+                let squares: Vec<f64> = map.iter().map(|v| v * v).collect();
+                mean(map).abs() > 1e-6 * mean(&squares).sqrt()
+            })
+            .count();
+        if referenced > 0 {
+            self.notes.push(Finding::new(Code::AverageReferenced).with("maps", referenced).with("count", self.count()));
+        }
+        if self.settings.map_unit == MapUnit::Relative {
+            self.notes.push(Finding::new(Code::UnitRelative));
+        }
+        if self.fitter.field().images().is_none() {
+            self.notes.push(Finding::new(Code::SeriesOnly));
+        }
+    }
+}
+
+fn sha256(bytes: &[u8]) -> String {
+    Sha256::digest(bytes).iter().map(|byte| format!("{byte:02x}")).collect()
+}

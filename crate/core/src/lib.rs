@@ -30,5 +30,7 @@ pub mod report;
 
 mod analyse;
 
+pub use analyse::{Request, Study, analyse};
 pub use finding::{Code, Error, Finding, Place};
 pub use math::Vec3;
+pub use report::{MapReport, Program, Report, Settings};

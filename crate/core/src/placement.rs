@@ -1,1 +1,267 @@
-//! x
+//! Electrodes and map labels to positions on the head; says what it assumed and what did not match.
+
+use crate::electrode::{Electrode, Label, standard_position};
+use crate::finding::{Code, Error, Finding, Place};
+use crate::head::{HEAD_RADII_MM, STANDARD_RADIUS_MM, Sphere, SphereFit, spread};
+use crate::map::Maps;
+use crate::math::Vec3;
+use std::collections::HashMap;
+
+/// Fewest electrodes that a dipole is fitted to: seven parameters of reference, position and moment, and three more.
+pub const FEWEST_ELECTRODES: usize = 10;
+
+/// Fewer electrodes than those of the 10-20 system bring a warning.
+pub const FEW_ELECTRODES: usize = 19;
+
+/// Electrodes closer than this are at one place.
+const COINCIDENT_MM: f64 = 0.1;
+
+/// A deviation from the sphere that brings a warning; measured heads reach 14 to 21 mm.
+const LARGE_DEVIATION_MM: f64 = 25.0;
+
+/// Electrodes on the head.
+#[derive(Clone, Debug)]
+pub struct Placement {
+    /// All electrodes that have a position and a value.
+    pub electrodes: Vec<Placed>,
+    /// The scalp, in millimetres, with the deviations of the electrodes from it.
+    pub sphere: SphereFit,
+    /// What was assumed and what did not match.
+    pub notes: Vec<Finding>,
+}
+
+/// An electrode with its row in the table of maps.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Placed {
+    /// Label as the table of electrodes, or else that of maps, writes it.
+    pub label: Label,
+    /// Position in the frame of the electrode table.
+    pub position_mm: Vec3,
+    /// Row in the maps.
+    pub row: usize,
+    /// Whether the fits use it; false when left out by hand.
+    pub used: bool,
+}
+
+/// What the user wants otherwise than the electrodes tell.
+#[derive(Clone, Debug, Default)]
+pub struct Wishes {
+    /// Labels to leave out.
+    pub exclude: Vec<Label>,
+    /// Centre of the head in the frame of the electrode table.
+    pub centre_mm: Option<Vec3>,
+    /// Scalp radius.
+    pub radius_mm: Option<f64>,
+}
+
+impl Placement {
+    /// Electrodes that the fits use.
+    pub fn used(&self) -> impl Iterator<Item = &Placed> {
+        self.electrodes.iter().filter(|electrode| electrode.used)
+    }
+
+    /// Unit directions of the used electrodes from the centre: they are projected onto the sphere along its radius.
+    pub fn directions(&self) -> Vec<Vec3> {
+        let centre = self.sphere.sphere.centre;
+        self.used().filter_map(|electrode| (electrode.position_mm - centre).unit()).collect()
+    }
+}
+
+/// Matches labels without regard to case, recognises the unit of length by the size of the head, and fits the sphere to
+/// all electrodes that have a position and a value, whether left out or not. Without a table, or with labels alone, the
+/// electrodes stand at their standard positions on a sphere of [`STANDARD_RADIUS_MM`].
+///
+/// # Errors
+/// `labels-unmatched`, `electrodes-too-few`, `electrodes-coincident`, `electrodes-collinear`, `electrodes-coplanar`,
+/// `units-unrecognised`, `head-invalid`.
+pub fn place(table: Option<&[Electrode]>, maps: &Maps, wishes: &Wishes) -> Result<Placement, Error> {
+    let mut notes = Vec::new();
+    let measured = table.filter(|electrodes| electrodes.iter().any(|e| e.position.is_some()));
+    let mut electrodes = match_labels(table, measured.is_some(), maps, &mut notes)?;
+    let points: Vec<Vec3> = electrodes.iter().map(|e| e.position_mm).collect();
+    if electrodes.len() >= FEWEST_ELECTRODES {
+        refuse_flat(&points)?;
+    }
+    let fitted = if measured.is_some() && electrodes.len() >= FEWEST_ELECTRODES {
+        let (factor, sphere) = recognise_unit(&points, &mut notes)?;
+        electrodes.iter_mut().for_each(|e| e.position_mm = e.position_mm * factor);
+        sphere
+    } else {
+        notes.push(Finding::new(Code::StandardPositions).with("radius_mm", STANDARD_RADIUS_MM));
+        electrodes.iter_mut().for_each(|e| e.position_mm = e.position_mm * STANDARD_RADIUS_MM);
+        Sphere { centre: Vec3::ZERO, radius: STANDARD_RADIUS_MM }
+    };
+    refuse_coincident(&electrodes)?;
+    let sphere = wished(fitted, wishes, &electrodes)?;
+    leave_out(&mut electrodes, &wishes.exclude, &mut notes);
+
+    let used = electrodes.iter().filter(|e| e.used).count();
+    if used < FEWEST_ELECTRODES {
+        return Err(Finding::new(Code::ElectrodesTooFew)
+            .at(Place::input("maps"))
+            .with("found", used)
+            .with("fewest", FEWEST_ELECTRODES)
+            .into());
+    }
+    let usable: Vec<Vec3> = electrodes.iter().filter(|e| e.used).map(|e| e.position_mm).collect();
+    refuse_flat(&usable)?;
+    if used < FEW_ELECTRODES {
+        notes.push(Finding::new(Code::FewElectrodes).with("electrodes", used).with("degrees_of_freedom", used - 7));
+    }
+    notes.push(Finding::new(Code::AxesAssumed));
+    if sphere.max > LARGE_DEVIATION_MM {
+        let far = |e: &Placed| ((e.position_mm - sphere.sphere.centre).norm() - sphere.sphere.radius).abs();
+        let worst = electrodes.iter().reduce(|worst, e| if far(e) > far(worst) { e } else { worst });
+        if let Some(worst) = worst {
+            notes.push(
+                Finding::new(Code::SphereDeviation)
+                    .at(Place { label: Some(worst.label.to_string()), ..Place::input("electrodes") })
+                    .with("max_mm", sphere.max)
+                    .with("label", worst.label.as_str()),
+            );
+        }
+    }
+    Ok(Placement { electrodes, sphere, notes })
+}
+
+/// Electrodes with position and value, positions still in the unit of the table.
+fn match_labels(
+    table: Option<&[Electrode]>,
+    measured: bool,
+    maps: &Maps,
+    notes: &mut Vec<Finding>,
+) -> Result<Vec<Placed>, Error> {
+    let known: Option<HashMap<String, &Electrode>> =
+        table.map(|electrodes| electrodes.iter().map(|e| (e.label.key(), e)).collect());
+    let mut placed = Vec::new();
+    let mut unplaced = Vec::new();
+    for (row, label) in maps.labels.iter().enumerate() {
+        if maps.values.row(row).iter().all(|value| value.is_nan()) {
+            continue;
+        }
+        let electrode = match &known {
+            Some(known) => known.get(&label.key()).copied().map(|e| (e.label.clone(), e.position)),
+            None => Some((label.clone(), None)),
+        };
+        let found = electrode.and_then(|(label, position)| {
+            let position = if measured { position } else { standard_position(&label) };
+            position.map(|position_mm| Placed { label, position_mm, row, used: true })
+        });
+        match found {
+            Some(electrode) => placed.push(electrode),
+            None => unplaced.push(label.to_string()),
+        }
+    }
+    if placed.is_empty() {
+        let some = |labels: Vec<String>| labels.into_iter().take(5).collect::<Vec<_>>();
+        let electrodes = table.map(|t| t.iter().map(|e| e.label.to_string()).collect()).unwrap_or_default();
+        return Err(Finding::new(Code::LabelsUnmatched)
+            .at(Place::input("maps"))
+            .with("maps", some(maps.labels.iter().map(Label::to_string).collect()))
+            .with("electrodes", some(electrodes))
+            .into());
+    }
+    if !unplaced.is_empty() {
+        notes.push(Finding::new(Code::ValuesWithoutPosition).at(Place::input("maps")).with("labels", unplaced));
+    }
+    let valued: std::collections::HashSet<String> = placed.iter().map(|e| e.label.key()).collect();
+    let without_value: Vec<String> = table
+        .unwrap_or_default()
+        .iter()
+        .filter(|e| (e.position.is_some() || !measured) && !valued.contains(&e.label.key()))
+        .map(|e| e.label.to_string())
+        .collect();
+    if !without_value.is_empty() {
+        notes.push(
+            Finding::new(Code::PositionsWithoutValue).at(Place::input("electrodes")).with("labels", without_value),
+        );
+    }
+    Ok(placed)
+}
+
+fn refuse_flat(points: &[Vec3]) -> Result<(), Error> {
+    let [least, middle, most] = spread(points).values;
+    let code = if most <= 0.0 {
+        Code::ElectrodesCoincident
+    } else if middle <= 1e-9 * most {
+        Code::ElectrodesCollinear
+    } else if least <= 1e-9 * most {
+        Code::ElectrodesCoplanar
+    } else {
+        return Ok(());
+    };
+    Err(Finding::new(code).at(Place::input("electrodes")).into())
+}
+
+/// Millimetres per unit of length, and the fitted sphere in millimetres.
+fn recognise_unit(points: &[Vec3], notes: &mut Vec<Finding>) -> Result<(f64, Sphere), Error> {
+    let unrecognised = |radius: Option<f64>| {
+        let finding = Finding::new(Code::UnitsUnrecognised).at(Place::input("electrodes"));
+        Error::from(match radius {
+            Some(radius) => finding.with("radius", radius),
+            None => finding,
+        })
+    };
+    let sphere = Sphere::fit(points).ok_or_else(|| unrecognised(None))?.sphere;
+    if (sphere.radius - 1.0).abs() <= 0.05 && sphere.centre.norm() <= 0.05 {
+        notes.push(Finding::new(Code::UnitSphereScaled).with("radius_mm", STANDARD_RADIUS_MM));
+        return Ok((STANDARD_RADIUS_MM, Sphere { centre: Vec3::ZERO, radius: STANDARD_RADIUS_MM }));
+    }
+    let (unit, factor) = [("m", 1000.0), ("cm", 10.0), ("mm", 1.0)]
+        .into_iter()
+        .find(|(_, factor)| HEAD_RADII_MM.contains(&(sphere.radius * factor)))
+        .ok_or_else(|| unrecognised(Some(sphere.radius)))?;
+    notes.push(
+        Finding::new(Code::UnitRecognised)
+            .at(Place::input("electrodes"))
+            .with("unit", unit)
+            .with("radius_mm", sphere.radius * factor),
+    );
+    Ok((factor, Sphere { centre: sphere.centre * factor, radius: sphere.radius * factor }))
+}
+
+fn refuse_coincident(electrodes: &[Placed]) -> Result<(), Error> {
+    for (index, a) in electrodes.iter().enumerate() {
+        if let Some(b) = electrodes[..index].iter().find(|b| (a.position_mm - b.position_mm).norm() < COINCIDENT_MM) {
+            return Err(Finding::new(Code::ElectrodesCoincident)
+                .at(Place { label: Some(a.label.to_string()), ..Place::input("electrodes") })
+                .with("label", a.label.as_str())
+                .with("other", b.label.as_str())
+                .into());
+        }
+    }
+    Ok(())
+}
+
+fn wished(fitted: Sphere, wishes: &Wishes, electrodes: &[Placed]) -> Result<SphereFit, Error> {
+    let invalid =
+        |why: &str| Error::from(Finding::new(Code::HeadInvalid).at(Place::input("settings")).with("why", why));
+    let sphere =
+        Sphere { centre: wishes.centre_mm.unwrap_or(fitted.centre), radius: wishes.radius_mm.unwrap_or(fitted.radius) };
+    if !sphere.centre.is_finite() {
+        return Err(invalid("the centre is not three numbers"));
+    }
+    if !HEAD_RADII_MM.contains(&sphere.radius) {
+        return Err(invalid("the radius is not between 40 and 120 mm"));
+    }
+    let points: Vec<Vec3> = electrodes.iter().map(|e| e.position_mm).collect();
+    if points.iter().any(|&p| (p - sphere.centre).norm() < 0.1 * sphere.radius) {
+        return Err(invalid("an electrode lies near the centre"));
+    }
+    Ok(sphere.deviations(&points))
+}
+
+fn leave_out(electrodes: &mut [Placed], exclude: &[Label], notes: &mut Vec<Finding>) {
+    for electrode in electrodes.iter_mut() {
+        electrode.used = !exclude.contains(&electrode.label);
+    }
+    let labels = |found: bool| -> Vec<String> {
+        let known = |label: &&Label| electrodes.iter().any(|e| e.label == **label) == found;
+        exclude.iter().filter(known).map(Label::to_string).collect()
+    };
+    for (code, labels) in [(Code::Excluded, labels(true)), (Code::ExcludeUnmatched, labels(false))] {
+        if !labels.is_empty() {
+            notes.push(Finding::new(code).with("labels", labels));
+        }
+    }
+}

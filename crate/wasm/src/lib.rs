@@ -1,8 +1,108 @@
-//! The engine's WebAssembly bindings.
-use wasm_bindgen::prelude::*;
+//! The engine's WebAssembly bindings: requests in, reports out, as plain JavaScript values. The only place that knows
+//! JavaScript; everything it does is one call into `inward_core`.
 
-/// Version of the program.
+mod picture;
+mod wire;
+
+use inward_core::{MapReport, Request, Settings, Study as Inner};
+use js_sys::Object;
+use wasm_bindgen::prelude::*;
+use wire::{Inputs, plain, set, thrown};
+
+/// Panic messages go to the console, where the calling script finds them for its copyable details.
+#[wasm_bindgen(start)]
+fn start() {
+    console_error_panic_hook::set_once();
+}
+
+/// Short hash of the engine's sources, given by the build tool.
+const BUILD: Option<&str> = option_env!("INWARD_BUILD");
+
+/// Name, version and build of the program.
 #[wasm_bindgen]
-pub fn version() -> String {
-    env!("CARGO_PKG_VERSION").into()
+pub fn program() -> Result<JsValue, JsValue> {
+    plain(&inward_core::Program { name: "Inward", version: env!("CARGO_PKG_VERSION"), build: BUILD })
+}
+
+/// The report of `{ electrodes?, maps, settings? }`.
+#[wasm_bindgen]
+pub fn analyse(request: JsValue) -> Result<JsValue, JsValue> {
+    let inputs = Inputs::from_js(&request)?;
+    plain(&inward_core::analyse(&inputs.request()).map_err(|error| thrown(&error))?)
+}
+
+/// Reads and prepares `{ electrodes?, maps, settings? }` once, to fit maps one by one.
+#[wasm_bindgen]
+pub fn open(request: JsValue) -> Result<Study, JsValue> {
+    let inputs = Inputs::from_js(&request)?;
+    Inner::open(&inputs.request()).map(Study).map_err(|error| thrown(&error))
+}
+
+/// A prepared table of maps.
+#[wasm_bindgen]
+pub struct Study(Inner);
+
+#[wasm_bindgen]
+impl Study {
+    /// Number of maps.
+    #[wasm_bindgen(getter)]
+    pub fn count(&self) -> usize {
+        self.0.count()
+    }
+
+    /// The head of all fits.
+    pub fn head(&self) -> Result<JsValue, JsValue> {
+        plain(&self.0.head())
+    }
+
+    /// Electrodes with position and value.
+    pub fn electrodes(&self) -> Result<JsValue, JsValue> {
+        plain(&self.0.electrodes())
+    }
+
+    /// What was assumed and what did not match.
+    pub fn notes(&self) -> Result<JsValue, JsValue> {
+        plain(&self.0.notes())
+    }
+
+    /// The report without its maps.
+    pub fn preamble(&self) -> Result<JsValue, JsValue> {
+        plain(&self.0.preamble())
+    }
+
+    /// The fit of one map.
+    pub fn fit(&self, index: usize) -> Result<JsValue, JsValue> {
+        plain(&self.0.fit(index).map_err(|error| thrown(&error))?)
+    }
+
+    /// The fit of one map with what is named added to it.
+    pub fn assess(&self, index: usize, what: JsValue) -> Result<JsValue, JsValue> {
+        let what = serde_wasm_bindgen::from_value::<Vec<inward_core::report::Assessment>>(what)
+            .map_err(|problem| thrown(&Settings::unknown(problem)))?;
+        plain(&self.0.assess(index, &what).map_err(|error| thrown(&error))?)
+    }
+
+    /// The answer for one map in words, numbers and pictures; `null` for a map that cannot be fitted.
+    pub fn sheet(&self, index: usize) -> Result<JsValue, JsValue> {
+        match self.0.fit(index).map_err(|error| thrown(&error))? {
+            MapReport::Failed { .. } => Ok(JsValue::NULL),
+            MapReport::Fitted(map) => {
+                let sheet = plain(&self.0.sheet(&map))?;
+                let picture = self.0.picture(&map).map_or(JsValue::NULL, |picture| picture::to_js(&picture).into());
+                set(&Object::from(sheet.clone()), "picture", picture);
+                Ok(sheet)
+            }
+        }
+    }
+}
+
+impl Inputs {
+    fn request(&self) -> Request<'_> {
+        Request {
+            electrodes: self.electrodes.as_deref(),
+            maps: &self.maps,
+            settings: self.settings.clone(),
+            build: BUILD,
+        }
+    }
 }

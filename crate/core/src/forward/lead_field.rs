@@ -122,10 +122,6 @@ impl LeadField {
         self.local_by(position, self.images.as_ref(), 2)
     }
 
-    pub(crate) fn blocks(&self) -> &[[[f64; LANES]; 3]] {
-        &self.blocks
-    }
-
     fn local_by(&self, position: Vec3, images: Option<&Images>, order: usize) -> Local {
         let u = position.dot(position);
         let terms = if images.is_some() { 0 } else { self.series.terms(u.sqrt(), order) };

@@ -1,1 +1,21 @@
-//! x
+//! Bytes to tables to electrodes and maps. Every outcome is a value or an error that says where; nothing panics.
+#![deny(clippy::unwrap_used, clippy::expect_used, clippy::indexing_slicing)]
+
+mod electrodes;
+mod maps;
+mod table;
+mod text;
+
+pub use electrodes::read_electrodes;
+pub use maps::read_maps;
+pub use table::{Field, Row, Table};
+pub use text::decode;
+
+/// Largest input in bytes.
+pub const MOST_BYTES: usize = 64 << 20;
+
+/// Most electrodes of a table.
+pub const MOST_ELECTRODES: usize = 512;
+
+/// Most maps of a table.
+pub const MOST_MAPS: usize = 65_536;

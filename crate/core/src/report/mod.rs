@@ -1,1 +1,216 @@
-//! x
+//! Results as they leave the program: plain structures for reports, and the only place where numbers become text.
+
+mod messages;
+mod number;
+mod settings;
+mod sheet;
+
+pub use messages::{hint, is_warning, message};
+pub use settings::{Assessment, HeadSettings, Settings};
+pub use sheet::{Alternative, Row, Sheet, Site};
+
+use crate::finding::{Code, Error, Finding, Place, Value};
+use crate::fit::Stopped;
+use crate::head::Shell;
+use crate::math::Vec3;
+use serde::Serialize;
+use std::collections::BTreeMap;
+
+/// Everything about one table of maps. Every key is always present; what is absent is `null`.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct Report {
+    /// `inward-report`.
+    pub format: &'static str,
+    /// Version of this structure.
+    pub version: u32,
+    /// What made it.
+    pub program: Program,
+    /// Inputs with the SHA-256 of their bytes.
+    pub inputs: Vec<Input>,
+    /// Settings, defaults included.
+    pub settings: Settings,
+    /// The head of all fits.
+    pub head: HeadReport,
+    /// Electrodes with position and value.
+    pub electrodes: Vec<ElectrodeReport>,
+    /// One entry for each map, in the order of the table.
+    pub maps: Vec<MapReport>,
+    /// What was assumed and what did not match.
+    pub notes: Vec<Note>,
+}
+
+/// Name and version of the program.
+#[derive(Clone, Debug, PartialEq, Eq, Serialize)]
+pub struct Program {
+    /// Its name.
+    pub name: &'static str,
+    /// Its version.
+    pub version: &'static str,
+    /// Short hash of the engine's sources, where the build tool has given it.
+    pub build: Option<&'static str>,
+}
+
+/// An input.
+#[derive(Clone, Debug, PartialEq, Eq, Serialize)]
+pub struct Input {
+    /// `electrodes` or `maps`.
+    pub name: &'static str,
+    /// SHA-256 of its bytes, hexadecimal.
+    pub sha256: String,
+}
+
+/// The head model.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct HeadReport {
+    /// Centre in the frame of the electrode table.
+    pub centre_mm: Vec3,
+    /// Scalp radius.
+    pub radius_mm: f64,
+    /// Root mean square of the electrodes' radial deviations from the sphere.
+    pub fit_rms_mm: f64,
+    /// Largest absolute deviation.
+    pub fit_max_mm: f64,
+    /// Shells, innermost first.
+    pub shells: Vec<Shell>,
+}
+
+/// An electrode.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct ElectrodeReport {
+    /// Its label.
+    pub label: String,
+    /// Position in the frame of the electrode table.
+    pub position_mm: Vec3,
+    /// Whether the fits use it.
+    pub used: bool,
+}
+
+/// The outcome for one map.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+#[serde(untagged)]
+pub enum MapReport {
+    /// A fitted map.
+    Fitted(Box<FittedMap>),
+    /// A map that cannot be fitted.
+    Failed {
+        /// Its name.
+        name: String,
+        /// Why not.
+        error: Box<ErrorReport>,
+    },
+}
+
+/// A fitted map. Shares are fractions, lengths millimetres.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct FittedMap {
+    /// Its name.
+    pub name: String,
+    /// |d − L m|² / |d|², both average-referenced.
+    pub residual_variance: f64,
+    /// 1 − residual variance.
+    pub variance_explained: f64,
+    /// See [`crate::assess::adjusted_residual_variance`].
+    pub adjusted_rv: f64,
+    /// Electrodes used less 7.
+    pub degrees_of_freedom: usize,
+    /// The dipole.
+    pub dipole: DipoleReport,
+    /// How the search went.
+    pub fit: SearchReport,
+    /// The map, average-referenced, in its own unit and the order of the used electrodes.
+    pub measured: Vec<f64>,
+    /// The dipole's map.
+    pub projected: Vec<f64>,
+    /// The difference.
+    pub residual: Vec<f64>,
+}
+
+/// An equivalent dipole.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct DipoleReport {
+    /// Position in the frame of the electrode table.
+    pub position_mm: Vec3,
+    /// Position with x right, y front, z up and the origin at the sphere's centre.
+    pub canonical_mm: Vec3,
+    /// Standard site radially above, where one is within 20°.
+    pub nearest_site: Option<&'static str>,
+    /// Which half of the head, `midline` within 5 mm of its mid-plane.
+    pub side: &'static str,
+    /// Unit moment in the frame of the electrode table, for the sign of the map as given.
+    pub direction: Vec3,
+    /// Moment in nAm; relative maps count as µV.
+    pub strength: f64,
+    /// `nAm` or `relative`.
+    pub strength_unit: &'static str,
+    /// Distance from the centre over the radius of the innermost shell.
+    pub eccentricity: f64,
+    /// Inner-skull radius less the distance from the centre.
+    pub depth_mm: f64,
+    /// (m·r̂)² / |m|²; absent at the centre.
+    pub radial_share: Option<f64>,
+    /// Whether the position lies on the boundary of the region of sources.
+    pub at_boundary: bool,
+}
+
+/// How a search went.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct SearchReport {
+    /// Why it ended.
+    pub stopped_because: Stopped,
+    /// Evaluations of the residual.
+    pub evaluations: usize,
+}
+
+/// A note in words.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct Note {
+    /// What it is.
+    pub code: Code,
+    /// `info` or `warning`.
+    pub severity: &'static str,
+    /// In words.
+    pub message: String,
+    /// Where in the input.
+    #[serde(rename = "where")]
+    pub place: Option<Place>,
+    /// The values of the message.
+    pub values: BTreeMap<&'static str, Value>,
+}
+
+/// An error in words.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct ErrorReport {
+    /// What it is.
+    pub code: Code,
+    /// In words.
+    pub message: String,
+    /// Where in the input.
+    #[serde(rename = "where")]
+    pub place: Option<Place>,
+    /// What to do.
+    pub hint: String,
+}
+
+impl From<&Finding> for Note {
+    fn from(finding: &Finding) -> Self {
+        Self {
+            code: finding.code,
+            severity: if is_warning(finding.code) { "warning" } else { "info" },
+            message: message(finding),
+            place: finding.place.clone(),
+            values: finding.values.iter().cloned().collect(),
+        }
+    }
+}
+
+impl From<&Error> for ErrorReport {
+    fn from(error: &Error) -> Self {
+        let finding = error.finding();
+        Self {
+            code: finding.code,
+            message: message(finding),
+            place: finding.place.clone(),
+            hint: hint(finding.code).to_owned(),
+        }
+    }
+}

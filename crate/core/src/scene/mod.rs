@@ -1,1 +1,11 @@
-//! x
+//! What is to be drawn, in unit coordinates: rasters and lines, no colours, no pixels of a screen.
+
+mod contour;
+mod disc;
+mod picture;
+mod spline;
+
+pub use contour::{Contour, contours};
+pub use disc::{Disc, DiscPoint, hull};
+pub use picture::{Extremes, Layer, Picture, PictureElectrode, Ring};
+pub use spline::{Spline, spline_kernel};

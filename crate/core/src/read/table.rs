@@ -1,0 +1,182 @@
+use crate::finding::{Code, Error, Finding, Place};
+
+/// A table of text fields.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Table {
+    /// Names of the columns, where the first row holds names.
+    pub header: Option<Row>,
+    /// Rows of equally many fields.
+    pub rows: Vec<Row>,
+    /// Number of columns.
+    pub width: usize,
+}
+
+/// A line of a table.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Row {
+    /// Line in the text, from 1.
+    pub line: usize,
+    /// Its fields.
+    pub fields: Vec<Field>,
+}
+
+/// A field without the blanks and quotes around it.
+pub type Field = String;
+
+#[derive(Clone, Copy, PartialEq)]
+enum Delimiter {
+    Mark(char),
+    Blanks,
+}
+
+impl Table {
+    /// Splits text into rows and fields. The delimiter is the first of tab, semicolon and comma that stands in every
+    /// line of the first twenty outside quotes; otherwise runs of blanks. Empty lines and lines that begin with `#` or
+    /// `%` are passed over. The first row is a header when it holds no number and either
+    /// a usual name of the label column, or numbers follow.
+    ///
+    /// # Errors
+    /// `table-ragged` at the first line with another number of fields than the first one.
+    pub fn read(text: &str, input: &'static str) -> Result<Self, Error> {
+        let lines: Vec<(usize, &str)> = text
+            .split('\n')
+            .flat_map(|line| line.strip_suffix('\r').unwrap_or(line).split('\r'))
+            .enumerate()
+            .map(|(index, line)| (index + 1, line))
+            .filter(|(_, line)| {
+                let line = line.trim_start();
+                !line.is_empty() && !line.starts_with(['#', '%'])
+            })
+            .collect();
+        let delimiter = delimiter(&lines);
+        let mut rows: Vec<Row> =
+            lines.iter().map(|&(line, text)| Row { line, fields: split(text, delimiter) }).collect();
+        let width = rows.first().map_or(0, |row| row.fields.len());
+        for row in &rows {
+            if row.fields.len() != width {
+                return Err(Finding::new(Code::TableRagged)
+                    .at(Place::line(input, row.line))
+                    .with("found", row.fields.len())
+                    .with("expected", width)
+                    .into());
+            }
+        }
+        let header = match rows.split_first() {
+            Some((first, rest)) if is_header(first, rest) => Some(rows.remove(0)),
+            _ => None,
+        };
+        Ok(Self { header, rows, width })
+    }
+
+    /// Number of the column, from 0, whose name is one of `names`, without regard to case.
+    pub fn column(&self, names: &[&str]) -> Option<usize> {
+        let header = self.header.as_ref()?;
+        header.fields.iter().position(|field| names.iter().any(|name| field.eq_ignore_ascii_case(name)))
+    }
+
+    /// Number of the column, from 0, in which most fields are words: neither a number nor missing. The first of equals.
+    pub fn words(&self) -> Option<usize> {
+        let words = |column: usize| {
+            let fields = self.rows.iter().filter_map(|row| row.fields.get(column));
+            fields.filter(|field| !is_missing(field) && number(field).is_none()).count()
+        };
+        let most = (0..self.width).reduce(|best, next| if words(next) > words(best) { next } else { best })?;
+        (words(most) > 0).then_some(most)
+    }
+}
+
+/// The finite number that a field holds.
+pub(super) fn number(field: &str) -> Option<f64> {
+    // `parse` also takes words such as "inf" and "nan".
+    let plain = field.bytes().all(|b| b.is_ascii_digit() || b"+-.eE".contains(&b));
+    field.parse().ok().filter(|value: &f64| plain && value.is_finite())
+}
+
+/// Whether a field says that there is no value.
+pub(super) fn is_missing(field: &str) -> bool {
+    ["", "n/a", "na", "nan", "-"].iter().any(|word| field.eq_ignore_ascii_case(word))
+}
+
+fn is_header(first: &Row, rest: &[Row]) -> bool {
+    let numbers = |row: &Row| row.fields.iter().filter(|field| number(field).is_some()).count();
+    let named = first.fields.iter().any(|field| KNOWN_NAMES.iter().any(|name| field.eq_ignore_ascii_case(name)));
+    numbers(first) == 0 && (named || rest.iter().any(|row| numbers(row) > 0))
+}
+
+/// Names that columns of labels and positions usually bear.
+const KNOWN_NAMES: [&str; 8] = ["label", "labels", "name", "electrode", "electrodes", "channel", "channels", "site"];
+
+/// Names of a column of labels.
+pub(super) const LABEL_NAMES: &[&str] = &KNOWN_NAMES;
+
+fn delimiter(lines: &[(usize, &str)]) -> Delimiter {
+    let sample = || lines.iter().take(20);
+    ['\t', ';', ',']
+        .into_iter()
+        .find(|&mark| sample().all(|(_, line)| split(line, Delimiter::Mark(mark)).len() > 1))
+        .map_or(Delimiter::Blanks, Delimiter::Mark)
+}
+
+fn split(line: &str, delimiter: Delimiter) -> Vec<Field> {
+    let mut fields = Vec::new();
+    let (mut field, mut quoted, mut begun) = (String::new(), false, false);
+    let mut characters = line.chars().peekable();
+    while let Some(character) = characters.next() {
+        let ends = !quoted
+            && match delimiter {
+                Delimiter::Mark(mark) => character == mark,
+                Delimiter::Blanks => character.is_whitespace(),
+            };
+        if ends {
+            if begun || delimiter != Delimiter::Blanks {
+                fields.push(core::mem::take(&mut field).trim().to_owned());
+            }
+            begun = false;
+        } else if character == '"' && quoted && characters.peek() == Some(&'"') {
+            characters.next();
+            field.push('"');
+        } else if character == '"' && (quoted || field.trim().is_empty()) {
+            (quoted, begun) = (!quoted, true);
+        } else {
+            begun |= !character.is_whitespace();
+            field.push(character);
+        }
+    }
+    if begun || delimiter != Delimiter::Blanks {
+        fields.push(field.trim().to_owned());
+    }
+    fields
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn splits_by_what_stands_in_every_line() {
+        for text in ["a\t1\t2\nb\t3\t4", "a;1;2\r\nb;3;4\r\n", "a, 1,2\nb,3 ,4\n\n", "  a   1 2\n# note\nb 3\t4 "] {
+            let table = Table::read(text, "maps").ok().filter(|t| t.header.is_none());
+            let fields: Option<Vec<Vec<String>>> =
+                table.map(|table| table.rows.into_iter().map(|row| row.fields).collect());
+            assert_eq!(
+                fields,
+                Some(vec![vec!["a".into(), "1".into(), "2".into()], vec!["b".into(), "3".into(), "4".into()]]),
+                "{text:?}"
+            );
+        }
+    }
+
+    #[test]
+    fn quotes_hold_delimiters_and_doubled_quotes() {
+        let split = split("\"a, \"\"b\"\"\",1", Delimiter::Mark(','));
+        assert_eq!(split, ["a, \"b\"", "1"]);
+    }
+
+    #[test]
+    fn numbers_are_finite_and_plain() {
+        assert_eq!(number("-1.5e-3"), Some(-0.0015));
+        for not in ["inf", "NaN", "1,5", "0x10", "1e999", "", "-"] {
+            assert_eq!(number(not), None, "{not}");
+        }
+    }
+}

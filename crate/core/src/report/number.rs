@@ -1,0 +1,65 @@
+//! Numbers as text, with the digits that they deserve.
+
+/// A share in percent: one decimal from 1 % on, two significant digits below.
+pub(super) fn percent(share: f64) -> String {
+    let percent = share * 100.0;
+    match percent {
+        p if p >= 1.0 || p == 0.0 => format!("{p:.1}"),
+        p if p >= 0.001 => significant(p, 2),
+        _ => "under 0.001".into(),
+    }
+}
+
+/// Millimetres, whole: no model is better.
+pub(super) fn millimetres(mm: f64) -> String {
+    plain(format!("{mm:.0}"))
+}
+
+/// Coordinates and radii: one decimal, to compare with other tables.
+pub(super) fn tenths(value: f64) -> String {
+    plain(format!("{value:.1}"))
+}
+
+/// Components of unit vectors and shares.
+pub(super) fn hundredths(value: f64) -> String {
+    plain(format!("{value:.2}"))
+}
+
+/// This many significant digits, without exponent where it stays short.
+pub(super) fn significant(value: f64, digits: usize) -> String {
+    if value == 0.0 || !value.is_finite() {
+        return "0".into();
+    }
+    let scientific = format!("{value:.*e}", digits.saturating_sub(1));
+    let exponent: i32 = scientific.split_once('e').and_then(|(_, e)| e.parse().ok()).unwrap_or(0);
+    if !(-4..7).contains(&exponent) {
+        return scientific;
+    }
+    let decimals = (digits as i32 - 1 - exponent).max(0) as usize;
+    plain(format!("{value:.decimals$}"))
+}
+
+/// Zero has no sign.
+fn plain(text: String) -> String {
+    match text.strip_prefix('-') {
+        Some(rest) if rest.bytes().all(|b| b == b'0' || b == b'.') => rest.to_owned(),
+        _ => text,
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn digits_follow_size() {
+        assert_eq!(percent(0.9721), "97.2");
+        assert_eq!(percent(0.00123), "0.12");
+        assert_eq!(percent(1e-9), "under 0.001");
+        assert_eq!(significant(12.345, 3), "12.3");
+        assert_eq!(significant(-0.0012345, 3), "-0.00123");
+        assert_eq!(significant(1.5e9, 3), "1.50e9");
+        assert_eq!(significant(12345.0, 3), "12345");
+        assert_eq!(millimetres(-0.2), "0");
+    }
+}

@@ -1,0 +1,163 @@
+use super::disc::inside;
+use super::{Contour, Disc, DiscPoint, Spline, contours, hull};
+use crate::math::Vec3;
+
+/// Three maps of one fit on the disc, with one scale.
+#[derive(Clone, Debug)]
+pub struct Picture {
+    /// Rasters have this many rows and columns, the first row at the front; their centres span the square −1 … 1.
+    pub size: usize,
+    /// Shared scale: −limit … limit, the largest absolute value of the measured and the projected map.
+    pub limit: f64,
+    /// Factor for the left-over map so that its pattern shows: 1, 2, 5, 10, …; not applied to its raster.
+    pub stretch: f64,
+    /// Levels of the contour lines of the first two maps; those of the left-over map are divided by the stretch.
+    pub levels: Vec<f64>,
+    /// The map.
+    pub measured: Layer,
+    /// The dipole's map.
+    pub projected: Layer,
+    /// What is left over.
+    pub residual: Layer,
+    /// Hull of the used electrodes, counter-clockwise: nothing is painted outside it.
+    pub outline: Vec<DiscPoint>,
+    /// Circles of equal angle from the top of the head.
+    pub rings: Vec<Ring>,
+    /// All electrodes.
+    pub electrodes: Vec<PictureElectrode>,
+    /// Where the equivalent position lies on the disc.
+    pub dipole: DiscPoint,
+    /// The horizontal part of the dipole's axis, at most of length 1.
+    pub axis: DiscPoint,
+}
+
+/// A map as raster and lines, reaching a little beyond the outline so that its edge can be cut smoothly.
+#[derive(Clone, Debug)]
+pub struct Layer {
+    /// Values in the map's unit; NaN well outside the outline.
+    pub raster: Vec<f32>,
+    /// Contour lines.
+    pub contours: Vec<Contour>,
+    /// Electrodes with the largest and the smallest value.
+    pub extremes: Extremes,
+}
+
+/// Indices into the electrodes of the picture.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Extremes {
+    /// Largest value.
+    pub max: usize,
+    /// Smallest value.
+    pub min: usize,
+}
+
+/// A circle about the top of the head.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Ring {
+    /// Angle from the top.
+    pub degrees: f64,
+    /// Radius on the disc.
+    pub radius: f64,
+}
+
+/// An electrode on the disc.
+#[derive(Clone, Debug, PartialEq)]
+pub struct PictureElectrode {
+    /// Its label.
+    pub label: String,
+    /// Direction from the centre: x right, y front, z up.
+    pub direction: Vec3,
+    /// Whether the fit uses it.
+    pub used: bool,
+}
+
+/// Rows and columns of the rasters.
+const SIZE: usize = 96;
+
+/// Contour lines on each side of zero.
+const LEVELS: usize = 5;
+
+impl Picture {
+    /// Draws the values of the used electrodes; `None` if they cannot carry an interpolation.
+    pub fn new(
+        spline: &Spline,
+        electrodes: Vec<PictureElectrode>,
+        [measured, projected, residual]: [&[f64]; 3],
+        position: Vec3,
+        direction: Vec3,
+    ) -> Self {
+        let disc = Disc::holding(electrodes.iter().map(|e| e.direction));
+        let used: Vec<usize> = (0..electrodes.len()).filter(|&i| electrodes[i].used).collect();
+        let points: Vec<DiscPoint> = used.iter().map(|&i| disc.project(electrodes[i].direction)).collect();
+        let outline = hull(&points);
+
+        let coefficients = [measured, projected, residual].map(|map| spline.coefficients(map));
+        let place = |index: usize| (2.0 * index as f64 + 1.0) / SIZE as f64 - 1.0;
+        let mut rasters = [(); 3].map(|()| vec![0.0; SIZE * SIZE]);
+        for pixel in 0..SIZE * SIZE {
+            let point = [place(pixel % SIZE), -place(pixel / SIZE)];
+            let values = spline.values(&coefficients, disc.direction(point));
+            rasters.iter_mut().zip(values).for_each(|(raster, value)| raster[pixel] = value);
+        }
+
+        let largest = |map: &[f64]| map.iter().fold(0.0f64, |most, v| most.max(v.abs()));
+        let limit = largest(measured).max(largest(projected));
+        let stretch = stretch(limit, largest(residual));
+        let levels: Vec<f64> = (1..=LEVELS)
+            .flat_map(|k| [-1.0, 1.0].map(|sign| sign * limit * (k as f64 - 0.5) / LEVELS as f64))
+            .collect();
+        let layer = |values: &[f64], raster: &[f64], stretch: f64| {
+            let levels: Vec<f64> = levels.iter().map(|level| level / stretch).collect();
+            let margin = 4.0 / SIZE as f64;
+            let painted = |pixel: usize| inside(&outline, [place(pixel % SIZE), -place(pixel / SIZE)], margin);
+            Layer {
+                raster: raster
+                    .iter()
+                    .enumerate()
+                    .map(|(pixel, value)| if painted(pixel) { *value as f32 } else { f32::NAN })
+                    .collect(),
+                contours: contours(raster, SIZE, &levels),
+                extremes: extremes(values, &used),
+            }
+        };
+        Self {
+            size: SIZE,
+            limit,
+            stretch,
+            measured: layer(measured, &rasters[0], 1.0),
+            projected: layer(projected, &rasters[1], 1.0),
+            residual: layer(residual, &rasters[2], stretch),
+            levels,
+            outline,
+            rings: [30.0, 60.0, 90.0, disc.rim_degrees()]
+                .map(|degrees| Ring { degrees, radius: degrees / disc.rim_degrees() })
+                .to_vec(),
+            dipole: disc.project(position),
+            axis: [direction[0], direction[1]],
+            electrodes,
+        }
+    }
+
+    /// Where an electrode lies on the disc.
+    pub fn place(&self, electrode: &PictureElectrode) -> DiscPoint {
+        Disc::holding(self.electrodes.iter().map(|e| e.direction)).project(electrode.direction)
+    }
+}
+
+/// The largest of 1, 2, 5, 10, … that keeps the left-over map within the scale, if it would not fill a quarter of it.
+fn stretch(limit: f64, left_over: f64) -> f64 {
+    if left_over <= 0.0 || left_over * 4.0 >= limit {
+        return 1.0;
+    }
+    let room = limit / left_over;
+    let decade = libm::pow(10.0, libm::floor(libm::log10(room)).min(9.0));
+    [5.0, 2.0, 1.0].into_iter().map(|step| step * decade).find(|factor| *factor <= room).unwrap_or(1.0)
+}
+
+fn extremes(values: &[f64], used: &[usize]) -> Extremes {
+    let best = |sign: f64| {
+        (0..values.len()).reduce(|best, i| if sign * values[i] > sign * values[best] { i } else { best }).unwrap_or(0)
+    };
+    let electrode = |index: usize| used.get(index).copied().unwrap_or(0);
+    Extremes { max: electrode(best(1.0)), min: electrode(best(-1.0)) }
+}

@@ -1,0 +1,75 @@
+//! Requests from JavaScript, reports and errors to JavaScript.
+
+use inward_core::report::ErrorReport;
+use inward_core::{Code, Error, Finding, Place, Settings};
+use js_sys::{Object, Reflect, Uint8Array};
+use serde::Serialize;
+use wasm_bindgen::prelude::*;
+
+/// A request with its bytes.
+pub(crate) struct Inputs {
+    pub electrodes: Option<Vec<u8>>,
+    pub maps: Vec<u8>,
+    pub settings: Settings,
+}
+
+impl Inputs {
+    /// Takes `{ electrodes?, maps, settings? }`; what else stands in it is refused.
+    pub(crate) fn from_js(request: &JsValue) -> Result<Self, JsValue> {
+        if !request.is_object() {
+            return Err(thrown(&Settings::unknown("the request is not an object")));
+        }
+        for key in Object::keys(request.unchecked_ref::<Object>()).iter() {
+            let key = key.as_string().unwrap_or_default();
+            if !["electrodes", "maps", "settings"].contains(&key.as_str()) {
+                return Err(thrown(&Settings::unknown(format!("unknown part `{key}` of the request"))));
+            }
+        }
+        let part = |name: &str| Reflect::get(request, &name.into()).unwrap_or(JsValue::UNDEFINED);
+        let settings = part("settings");
+        let settings = if settings.is_undefined() || settings.is_null() {
+            Settings::default()
+        } else {
+            serde_wasm_bindgen::from_value(settings).map_err(|problem| thrown(&Settings::unknown(problem)))?
+        };
+        let maps = bytes(&part("maps"), "maps")?
+            .ok_or_else(|| thrown(&Finding::new(Code::InputEmpty).at(Place::input("maps")).into()))?;
+        Ok(Self { electrodes: bytes(&part("electrodes"), "electrodes")?, maps, settings })
+    }
+}
+
+/// The content of an input, a string or bytes; `None` where it is left out.
+fn bytes(value: &JsValue, name: &str) -> Result<Option<Vec<u8>>, JsValue> {
+    if value.is_undefined() || value.is_null() {
+        Ok(None)
+    } else if let Some(text) = value.as_string() {
+        Ok(Some(text.into_bytes()))
+    } else if let Some(array) = value.dyn_ref::<Uint8Array>() {
+        Ok(Some(array.to_vec()))
+    } else {
+        Err(thrown(&Settings::unknown(format!("`{name}` is neither a string nor a Uint8Array"))))
+    }
+}
+
+/// A value as plain objects, arrays, numbers, strings, booleans and `null`.
+pub(crate) fn plain(value: &impl Serialize) -> Result<JsValue, JsValue> {
+    Ok(value.serialize(&serde_wasm_bindgen::Serializer::json_compatible())?)
+}
+
+/// A JavaScript `Error` with `code`, `message`, `where` and `hint`.
+pub(crate) fn thrown(error: &Error) -> JsValue {
+    let report = ErrorReport::from(error);
+    let thrown = js_sys::Error::new(&report.message);
+    if let Ok(place) = plain(&report.place) {
+        set(&thrown, "where", place);
+    }
+    set(&thrown, "code", report.code.as_str().into());
+    set(&thrown, "hint", report.hint.into());
+    thrown.into()
+}
+
+/// Sets a property of an object that was just made here, which cannot fail.
+pub(crate) fn set(object: &Object, name: &str, value: JsValue) {
+    let done = Reflect::set(object, &name.into(), &value);
+    debug_assert!(done.is_ok());
+}
