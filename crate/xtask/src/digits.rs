@@ -45,4 +45,23 @@ mod tests {
             assert_eq!(with_std(&format!("{clean}\n{planted}")), Some(planted));
         }
     }
+    #[test]
+    fn clippy_refuses_the_compilers_own_functions_in_the_core_and_the_bindings() {
+        let workspace = Workspace::open(None).unwrap();
+        let folder = std::env::temp_dir().join(format!("inward-clippy-{}", std::process::id()));
+        std::fs::create_dir_all(&folder).unwrap();
+        let planted = "pub fn f(x: f64, y: f32) -> (f64, f32) { (x.sin().mul_add(x, x.powi(2)), f32::exp(y)) }";
+        std::fs::write(folder.join("planted.rs"), planted).unwrap();
+        for package in ["crate/core", "crate/wasm"] {
+            let mut clippy = workspace.command("clippy-driver");
+            clippy.current_dir(&folder).env("CARGO_MANIFEST_DIR", workspace.root.join(package));
+            clippy.args(["planted.rs", "--crate-type=lib", "--edition=2024", "--emit=metadata"]);
+            let refused = clippy.arg("-Dclippy::disallowed_methods").output().unwrap();
+            let told = String::from_utf8_lossy(&refused.stderr);
+            for method in ["f64::sin", "f64::mul_add", "f64::powi", "f32::exp"] {
+                assert!(told.contains(&format!("disallowed method `{method}`")), "{told}");
+            }
+        }
+        std::fs::remove_dir_all(folder).unwrap();
+    }
 }

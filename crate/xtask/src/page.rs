@@ -31,7 +31,7 @@ pub fn page(template: &str, parts: &Parts) -> Result<String> {
         ("style", style),
         ("wasm", element("script", " type=\"text/plain\" id=\"wasm\"", parts.wasm)?),
         ("worker", element("script", " type=\"text/plain\" id=\"worker\"", parts.worker)?),
-        ("notices", element("script", " type=\"text/plain\" id=\"notices\"", parts.notices)?),
+        ("notices", element("script", " type=\"text/plain\" id=\"notices-text\"", parts.notices)?),
         ("script", script),
     ];
     let mut page = String::new();

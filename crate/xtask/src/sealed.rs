@@ -6,14 +6,13 @@ use crate::lexer::{Kind, Token, tokens};
 use anyhow::{Result, bail};
 
 /// Names that have no business in the scripts, whatever they are used for.
-const NAMES: [&str; 24] = [
+const NAMES: [&str; 23] = [
     "RTCPeerConnection",
     "caches",
     "cookie",
     "cookieStore",
     "createContextualFragment",
     "eval",
-    "execCommand",
     "import",
     "importScripts",
     "indexedDB",

@@ -19,9 +19,7 @@ pub fn test(workspace: &Workspace, install: bool) -> Result<()> {
     });
     steps.step("clippy, browser", || {
         let packages = ["--package=inward-core", "--package=inward-wasm", "--target", wasm::TARGET];
-        let mut clippy = workspace.cargo();
-        clippy.args(["clippy", "--locked", "--quiet", "--target-dir"]).arg(workspace.target.join("wasm"));
-        run(clippy.args(packages).args(["--", "-Dwarnings"]))
+        cargo(&[&["clippy", "--locked", "--quiet"], &packages[..], &["--", "-Dwarnings"]].concat())
     });
     steps.step("documentation", || {
         let mut doc = workspace.cargo();
