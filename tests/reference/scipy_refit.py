@@ -102,7 +102,7 @@ class Fit:
 NINETEEN = "Fp1 Fp2 F7 F3 Fz F4 F8 T7 C3 Cz C4 T8 P7 P3 Pz P4 P8 O1 O2".split()
 THIRTY_TWO = NINETEEN + "FC5 FC1 FC2 FC6 CP5 CP1 CP2 CP6 AF3 AF4 PO3 PO4 Oz".split()
 SEVENTY_ONE = [n for n in STANDARD if n not in
-               "Nz Iz N1 N2 I1 I2 AF9 AF10 PO9 PO10 AF1 AF2 PO1 PO2 AF5 AF6 PO5 PO6".split()][:71]
+               "Nz Iz N1 N2 I1 I2 AF9 AF10 PO9 PO10 AF1 AF2 PO1 PO2 AF5 AF6 PO5 PO6".split()]
 
 
 def direction(rng):

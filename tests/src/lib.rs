@@ -1,21 +1,31 @@
 //! Shared helpers of the checks: browsers, the page, Node, outside values, invented maps.
 mod browser;
 mod canary;
+mod draw;
 mod driver;
+mod electrodes;
 mod folder;
+mod mixture;
+mod multistart;
 mod node;
 mod page;
 mod place;
 mod program;
+mod series;
 mod session;
 mod variant;
 
 pub use browser::Browser;
 pub use canary::Canary;
+pub use draw::Draw;
+pub use electrodes::Electrodes;
 pub use folder::Folder;
+pub use mixture::Mixture;
+pub use multistart::MultiStart;
 pub use node::Node;
 pub use page::{DroppedFile, Page};
 pub use place::{data, dist_file, example, screenshot_file, tests_folder};
+pub use series::PlainSeries;
 pub use session::{CONTROL, Element, Session, TAB};
 pub use variant::Variant;
 

@@ -9,13 +9,15 @@ use std::process::{Command, Stdio};
 /// Node with the built engine.
 pub struct Node {
     program: PathBuf,
-    engine: PathBuf,
+    dist: PathBuf,
 }
 
 impl Node {
     /// Finds both; panics where one is missing.
     pub fn with_engine() -> Self {
-        Self { program: find_program("INWARD_NODE", &["node", "nodejs"]), engine: dist_file("engine/inward.mjs") }
+        dist_file("engine/inward.mjs");
+        let dist = dist_file("inward.html").parent().expect("a file lies in a folder").to_path_buf();
+        Self { program: find_program("INWARD_NODE", &["node", "nodejs"]), dist }
     }
 
     /// Runs a script of this package with `input` on its standard input, and returns what it printed.
@@ -23,7 +25,7 @@ impl Node {
         let mut process = Command::new(&self.program)
             .args(arguments)
             .arg(tests_folder().join(script))
-            .env("INWARD_ENGINE", &self.engine)
+            .env("INWARD_DIST", &self.dist)
             .stdin(Stdio::piped())
             .stdout(Stdio::piped())
             .stderr(Stdio::piped())
