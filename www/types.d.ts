@@ -25,7 +25,7 @@ interface EngineRequest {
 interface Program {
   name: string;
   version: string;
-  build: string;
+  build: string | null;
 }
 
 /** Where in which input something was found. */
@@ -104,7 +104,10 @@ interface DiscElectrode {
 
 type MapRole = "measured" | "projected" | "residual";
 
-/** What is painted, in unit coordinates: x to the right, y to the front. */
+/**
+ * What is painted, in unit coordinates: x to the right, y to the front. The rasters cover the square from -1 to 1,
+ * first row at the front; they reach two pixels beyond the outline and are NaN further out.
+ */
 interface Picture {
   size: number;
   measured: Float32Array;

@@ -21,32 +21,6 @@ const LABEL_DISTANCE = 12;
  * @property {{ front: string, left: string, right: string, above: string }} words
  */
 
-/** @param {Float32Array} raster @param {number} size @returns {Float32Array} */
-function spreadOutwards(raster, size) {
-  // The hull's edge cuts through pixels; values go on two pixels beyond it so that smoothing finds no hole there.
-  let now = raster;
-  for (let round = 0; round < 2; round++) {
-    const next = now.slice();
-    for (let at = 0; at < now.length; at++) {
-      if (!Number.isNaN(now[at])) continue;
-      const column = at % size;
-      let sum = 0;
-      let count = 0;
-      for (let dy = -size; dy <= size; dy += size) {
-        for (let dx = -1; dx <= 1; dx++) {
-          const value = column + dx < 0 || column + dx >= size ? NaN : (now[at + dy + dx] ?? NaN);
-          if (Number.isNaN(value)) continue;
-          sum += value;
-          count += 1;
-        }
-      }
-      if (count > 0) next[at] = sum / count;
-    }
-    now = next;
-  }
-  return now;
-}
-
 /**
  * @param {Float32Array} raster
  * @param {number} size
@@ -61,9 +35,8 @@ function imageOfRaster(raster, size, limit, theme) {
   if (pen === null) return image;
   const pixels = pen.createImageData(size, size);
   const table = colourTable(theme, TABLE_STEPS);
-  const spread = spreadOutwards(raster, size);
-  for (let at = 0; at < spread.length; at++) {
-    const value = spread[at];
+  for (let at = 0; at < raster.length; at++) {
+    const value = raster[at];
     if (Number.isNaN(value)) continue;
     const share = limit > 0 ? Math.min(1, Math.max(-1, value / limit)) : 0;
     const step = 3 * Math.round(((share + 1) / 2) * (TABLE_STEPS - 1));
@@ -107,9 +80,7 @@ export function paintDisc(canvas, content, around) {
   pen.clip();
   pen.imageSmoothingEnabled = true;
   pen.imageSmoothingQuality = "high";
-  // Pixel centres span [-1, 1]: the image is half a pixel larger on every side.
-  const reach = picture.size / (picture.size - 1);
-  pen.drawImage(imageOfRaster(picture[role], picture.size, limit, around.theme), -reach, -reach, 2 * reach, 2 * reach);
+  pen.drawImage(imageOfRaster(picture[role], picture.size, limit, around.theme), -1, -1, 2, 2);
   for (const line of picture.contours[role]) {
     const shift = around.theme === "light" ? -0.2 : 0.16;
     pen.strokeStyle = cssColour(colourOfShare(line.level / limit, around.theme, shift));

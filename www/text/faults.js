@@ -47,13 +47,18 @@ export function placeText(place) {
   return parts.join(", ");
 }
 
+/** @param {Program} program */
+export function programText({ name, version, build }) {
+  return build === null ? `${name} ${version}` : `${name} ${version} (${build})`;
+}
+
 /** What to copy into a report of the failure. @param {Fault} fault @param {Program | null} program */
 export function detailsText(fault, program) {
   const lines = [
     `code: ${fault.code}`,
     `message: ${fault.message}`,
     `where: ${placeText(fault.where) || "-"}`,
-    `program: ${program === null ? "not started" : `${program.name} ${program.version} (${program.build})`}`,
+    `program: ${program === null ? "not started" : programText(program)}`,
     `browser: ${navigator.userAgent}`,
   ];
   if (fault.details) lines.push("", fault.details.trim());

@@ -1,5 +1,6 @@
 /** The foot of the page: which program this is, and the licences of what is built in. */
 
+import { programText } from "../text/faults.js";
 import { need } from "./element.js";
 
 /** @param {import("../session/session.js").Session} session */
@@ -7,7 +8,7 @@ export function showColophon(session) {
   session.watch(
     (state) => state.program,
     (program) => {
-      need("program", HTMLElement).textContent = program === null ? "" : `${program.name} ${program.version} (${program.build})`;
+      need("program", HTMLElement).textContent = program === null ? "" : programText(program);
     },
   );
   const notices = need("notices", HTMLDetailsElement);

@@ -7,11 +7,13 @@ import { confirmOn } from "./confirm.js";
 import { make, need } from "./element.js";
 
 const REPORT_NAME = "inward-report.json";
+/** Values longer than this may break into lines. */
+const ONE_LINE = 26;
 
 /** @param {SheetRow} row */
 function rowElement(row) {
   const element = make("tr", "");
-  const value = make("td", "", { class: "value" });
+  const value = make("td", "", { class: row.value.length > ONE_LINE ? "value long" : "value" });
   value.append(row.value, make("span", row.unit === "" ? "" : `\u00a0${row.unit}`, { class: "unit-of" }));
   element.append(make("th", row.label, { scope: "row" }), value, make("td", row.meaning, { class: "meaning small" }));
   return element;
