@@ -34,7 +34,7 @@ export function pageFault(fault) {
 const PLACE_WORDS = /** @type {const} */ ({ file: "", line: "line", column: "column", byte: "byte", label: "electrode", map: "map" });
 
 /** A place in words: "map table, line 3, column 2". @param {Place | null} place */
-export function placeText(place) {
+function placeText(place) {
   if (place === null) return "";
   const parts = [];
   if (place.input === "maps") parts.push("map table");

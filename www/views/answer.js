@@ -1,5 +1,6 @@
 /** The answer in a sentence, first and largest, and the frame around everything that belongs to it. */
 
+import { typeset } from "../text/figures.js";
 import { subjectText } from "../text/words.js";
 import { make, need } from "./element.js";
 
@@ -29,7 +30,7 @@ export function showAnswer(session) {
       need("subject", HTMLElement).textContent = subjectText(answer);
       const map = answer.maps[answer.chosen];
       const text = sheet?.sentence ?? (map !== undefined && "error" in map ? `${map.name}: ${map.error.message}` : "");
-      sentence.replaceChildren(...splitSentence(text).map((part, at) => make("span", part, { class: at === 0 ? "first" : "rest" })));
+      sentence.replaceChildren(...splitSentence(text).map((part, at) => make("span", typeset(part), { class: at === 0 ? "first" : "rest" })));
       hint.textContent = !sheet && map !== undefined && "error" in map ? map.error.hint : "";
       hint.hidden = hint.textContent === "";
     },

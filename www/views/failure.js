@@ -1,7 +1,7 @@
 /** What went wrong: a sentence, a next step, and details to copy. */
 
 import { copyText } from "../export/out.js";
-import { detailsText, placeText } from "../text/faults.js";
+import { detailsText } from "../text/faults.js";
 import { keptText, subjectText } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { need } from "./element.js";
@@ -21,10 +21,7 @@ export function showFailure(session) {
     (state) => state.failure,
     (failure, state) => {
       panel.hidden = failure === null;
-      const where = placeText(failure?.where ?? null);
       need("failure-message", HTMLElement).textContent = failure?.message ?? "";
-      need("failure-where", HTMLElement).textContent = where;
-      need("failure-where", HTMLElement).hidden = where === "";
       need("failure-hint", HTMLElement).textContent = failure?.hint ?? "";
       const kept = need("failure-kept", HTMLElement);
       kept.hidden = state.answer === null;

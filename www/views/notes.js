@@ -1,16 +1,14 @@
 /** What the engine assumed or noticed while it read the inputs. */
 
+import { typeset } from "../text/figures.js";
 import { word } from "../text/words.js";
-import { placeText } from "../text/faults.js";
 import { make, need } from "./element.js";
 
 /** @param {ReportNote} note */
 function noteElement(note) {
   const element = make("li", "", { class: `note-${note.severity}` });
   if (note.severity === "warning") element.append(make("strong", `${word("note.warning")}: `));
-  element.append(note.message);
-  const where = placeText(note.where);
-  if (where !== "") element.append(make("span", ` (${where})`, { class: "small" }));
+  element.append(typeset(note.message));
   return element;
 }
 

@@ -2,20 +2,28 @@
 
 import { copyText, saveBlob } from "../export/out.js";
 import { tableText } from "../export/table.js";
+import { typeset } from "../text/figures.js";
 import { word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { make, need } from "./element.js";
 
 const REPORT_NAME = "inward-report.json";
-/** Values longer than this may break into lines. */
+/** Longer values take the place of their meaning, which then stands below. */
 const ONE_LINE = 26;
 
 /** @param {SheetRow} row */
 function rowElement(row) {
   const element = make("tr", "");
-  const value = make("td", "", { class: row.value.length > ONE_LINE ? "value long" : "value" });
-  value.append(row.value, make("span", row.unit === "" ? "" : `\u00a0${row.unit}`, { class: "unit-of" }));
-  element.append(make("th", row.label, { scope: "row" }), value, make("td", row.meaning, { class: "meaning small" }));
+  element.append(make("th", row.label, { scope: "row" }));
+  if (row.value.length > ONE_LINE) {
+    const both = make("td", "", { class: "long", colspan: "2" });
+    both.append(...row.value.split("; ").map((part) => make("div", typeset(part))), make("div", row.meaning, { class: "small" }));
+    element.append(both);
+  } else {
+    const value = make("td", typeset(row.value), { class: "value" });
+    if (row.unit !== "") value.append(make("span", `\u00a0${row.unit}`, { class: "unit-of" }));
+    element.append(value, make("td", typeset(row.meaning), { class: "meaning small" }));
+  }
   return element;
 }
 
