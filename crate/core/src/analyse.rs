@@ -16,6 +16,7 @@ use crate::report::{
 };
 use crate::scene::{Picture, PictureElectrode, Spline};
 use sha2::{Digest, Sha256};
+use std::sync::OnceLock;
 
 /// What to analyse.
 #[derive(Clone, Debug, Default)]
@@ -51,6 +52,8 @@ pub struct Study {
     shells: Shells,
     fitter: Fitter,
     notes: Vec<Finding>,
+    /// Made when the first picture is asked for.
+    spline: OnceLock<Option<Spline>>,
 }
 
 impl Study {
@@ -82,6 +85,7 @@ impl Study {
             placement,
             shells,
             fitter,
+            spline: OnceLock::new(),
         };
         study.note_the_rest();
         Ok(study)
@@ -175,7 +179,8 @@ impl Study {
 
     /// The picture of one fitted map; `None` if the electrodes cannot carry an interpolation.
     pub fn picture(&self, map: &FittedMap) -> Option<Picture> {
-        let spline = Spline::new(self.fitter.field().directions().to_vec())?;
+        let directions = || self.fitter.field().directions().to_vec();
+        let spline = self.spline.get_or_init(|| Spline::new(directions())).as_ref()?;
         let centre = self.placement.sphere.sphere.centre;
         let electrodes = self
             .placement
@@ -188,7 +193,8 @@ impl Study {
             })
             .collect();
         let layers = [&map.measured[..], &map.projected, &map.residual];
-        Some(Picture::new(&spline, electrodes, layers, map.dipole.canonical_mm, map.dipole.direction))
+        let limit = map.scale_limit();
+        Some(Picture::new(spline, electrodes, layers, limit, map.dipole.canonical_mm, map.dipole.direction))
     }
 
     fn fit_all(&self) -> Result<Vec<MapReport>, Error> {

@@ -26,16 +26,39 @@ impl Inputs {
             }
         }
         let part = |name: &str| Reflect::get(request, &name.into()).unwrap_or(JsValue::UNDEFINED);
-        let settings = part("settings");
-        let settings = if settings.is_undefined() || settings.is_null() {
-            Settings::default()
-        } else {
-            serde_wasm_bindgen::from_value(settings).map_err(|problem| thrown(&Settings::unknown(problem)))?
-        };
+        let settings = settings(&part("settings"))?;
         let maps = bytes(&part("maps"), "maps")?
             .ok_or_else(|| thrown(&Finding::new(Code::InputEmpty).at(Place::input("maps")).into()))?;
         Ok(Self { electrodes: bytes(&part("electrodes"), "electrodes")?, maps, settings })
     }
+}
+
+/// The settings; `serde_wasm_bindgen` asks objects for the keys it knows, so that the others are looked for here.
+fn settings(given: &JsValue) -> Result<Settings, JsValue> {
+    if given.is_undefined() || given.is_null() {
+        return Ok(Settings::default());
+    }
+    let unknown = |problem: String| thrown(&Settings::unknown(problem));
+    let settings: Settings =
+        serde_wasm_bindgen::from_value(given.clone()).map_err(|problem| unknown(problem.to_string()))?;
+    match unknown_key(given, &plain(&settings)?) {
+        Some(key) => Err(unknown(format!("there is no setting `{key}`"))),
+        None => Ok(settings),
+    }
+}
+
+/// The path of a key in `given` that `understood` lacks.
+fn unknown_key(given: &JsValue, understood: &JsValue) -> Option<String> {
+    if !given.is_object() {
+        return None;
+    }
+    Object::keys(given.unchecked_ref::<Object>()).iter().filter_map(|key| key.as_string()).find_map(|key| {
+        if !understood.is_object() || !Reflect::has(understood, &key.as_str().into()).unwrap_or(false) {
+            return Some(key);
+        }
+        let part = |of: &JsValue| Reflect::get(of, &key.as_str().into()).unwrap_or(JsValue::UNDEFINED);
+        unknown_key(&part(given), &part(understood)).map(|rest| format!("{key}.{rest}"))
+    })
 }
 
 /// The content of an input, a string or bytes; `None` where it is left out.

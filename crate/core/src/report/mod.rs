@@ -7,7 +7,7 @@ mod sheet;
 
 pub use messages::{hint, is_warning, message};
 pub use settings::{Assessment, HeadSettings, Settings};
-pub use sheet::{Alternative, Row, Sheet, Site};
+pub use sheet::{Alternative, Row, Scale, Sheet, Site};
 
 use crate::finding::{Code, Error, Finding, Place, Value};
 use crate::fit::Stopped;
@@ -123,6 +123,13 @@ pub struct FittedMap {
     pub projected: Vec<f64>,
     /// The difference.
     pub residual: Vec<f64>,
+}
+
+impl FittedMap {
+    /// Largest absolute value of the map and of the dipole's map: the end of the scale that all three share.
+    pub fn scale_limit(&self) -> f64 {
+        self.measured.iter().chain(&self.projected).fold(0.0, |most, v| most.max(v.abs()))
+    }
 }
 
 /// An equivalent dipole.

@@ -14,6 +14,17 @@ pub struct Sheet {
     pub rows: Vec<Row>,
     /// The three maps in words.
     pub alt: Alternative,
+    /// What the shared scale of the three maps ends with.
+    pub scale: Scale,
+}
+
+/// The ends of a scale from −limit to limit.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct Scale {
+    /// The limit, without sign.
+    pub limit: String,
+    /// Its unit.
+    pub unit: &'static str,
 }
 
 /// A number with its name, unit and meaning.
@@ -62,6 +73,7 @@ impl Sheet {
                 projected: described("Map of the one dipole", &map.projected, sites, unit),
                 residual: described("Left over", &map.residual, sites, unit),
             },
+            scale: Scale { limit: significant(map.scale_limit(), 2), unit: unit_name(unit) },
         }
     }
 }
@@ -220,11 +232,7 @@ fn rows(map: &FittedMap, head: &HeadReport, electrodes: usize) -> Vec<Row> {
 }
 
 fn described(what: &str, map: &[f64], sites: &[Site], unit: MapUnit) -> String {
-    let unit = match unit {
-        MapUnit::Microvolt => "µV",
-        MapUnit::Volt => "V",
-        MapUnit::Relative => "relative units",
-    };
+    let unit = unit_name(unit);
     let extreme = |sign: f64| {
         let best = (0..map.len()).reduce(|best, i| if sign * map[i] > sign * map[best] { i } else { best });
         best.and_then(|i| {
@@ -234,6 +242,14 @@ fn described(what: &str, map: &[f64], sites: &[Site], unit: MapUnit) -> String {
         .unwrap_or_default()
     };
     format!("{what}, seen from above: most positive at {}, most negative at {}.", extreme(1.0), extreme(-1.0))
+}
+
+fn unit_name(unit: MapUnit) -> &'static str {
+    match unit {
+        MapUnit::Microvolt => "µV",
+        MapUnit::Volt => "V",
+        MapUnit::Relative => "relative units",
+    }
 }
 
 /// A direction in plain words.

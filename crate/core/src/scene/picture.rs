@@ -7,7 +7,7 @@ use crate::math::Vec3;
 pub struct Picture {
     /// Rasters have this many rows and columns, the first row at the front; their centres span the square −1 … 1.
     pub size: usize,
-    /// Shared scale: −limit … limit, the largest absolute value of the measured and the projected map.
+    /// Shared scale: −limit … limit.
     pub limit: f64,
     /// Factor for the left-over map so that its pattern shows: 1, 2, 5, 10, …; not applied to its raster.
     pub stretch: f64,
@@ -78,11 +78,12 @@ const SIZE: usize = 96;
 const LEVELS: usize = 5;
 
 impl Picture {
-    /// Draws the values of the used electrodes; `None` if they cannot carry an interpolation.
+    /// Draws the values at the used electrodes on a scale of −limit … limit.
     pub fn new(
         spline: &Spline,
         electrodes: Vec<PictureElectrode>,
         [measured, projected, residual]: [&[f64]; 3],
+        limit: f64,
         position: Vec3,
         direction: Vec3,
     ) -> Self {
@@ -101,7 +102,6 @@ impl Picture {
         }
 
         let largest = |map: &[f64]| map.iter().fold(0.0f64, |most, v| most.max(v.abs()));
-        let limit = largest(measured).max(largest(projected));
         let stretch = stretch(limit, largest(residual));
         let levels: Vec<f64> = (1..=LEVELS)
             .flat_map(|k| [-1.0, 1.0].map(|sign| sign * limit * (k as f64 - 0.5) / LEVELS as f64))
