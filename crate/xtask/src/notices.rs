@@ -74,7 +74,7 @@ pub fn notices(workspace: &Workspace) -> Result<String> {
     Ok(told.collect::<Vec<_>>().join(&format!("\n{}\n\n", "-".repeat(72))))
 }
 
-/// A crate's licence files. Where the MIT licence is among those offered, it is the one taken.
+/// A crate's licence files. Where the choice is between MIT and Apache, MIT is the one taken.
 fn licence_texts(one: &Linked) -> Result<Vec<String>> {
     let starts = ["LICENSE", "LICENCE", "COPYING", "NOTICE", "UNLICENSE"];
     let upper = |path: &PathBuf| path.file_name().unwrap_or_default().to_string_lossy().to_uppercase();
@@ -84,11 +84,39 @@ fn licence_texts(one: &Linked) -> Result<Vec<String>> {
     }
     paths.retain(|path| path.is_file() && starts.iter().any(|start| upper(path).starts_with(start)));
     if paths.iter().any(|path| upper(path).contains("MIT")) {
-        paths.retain(|path| upper(path).contains("MIT") || upper(path).starts_with("NOTICE"));
+        paths.retain(|path| !upper(path).contains("APACHE"));
     }
     if paths.is_empty() {
         bail!("{} comes without a licence text", one.title);
     }
     paths.sort();
     paths.iter().map(|path| read(path)).collect()
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn every_linked_crate_is_named_with_a_text() {
+        let workspace = Workspace::open(None).unwrap();
+        let notices = notices(&workspace).unwrap();
+        for name in ["ndarray 0", "libm 0", "serde 1", "wasm-bindgen 0", "The Rust standard library"] {
+            assert!(notices.lines().any(|line| line.starts_with(name)), "{name}");
+        }
+        assert!(!notices.contains("syn "), "macros run at compile time and are not linked");
+    }
+
+    #[test]
+    fn of_a_choice_mit_is_taken_and_no_text_is_refused() {
+        let folder = std::env::temp_dir().join(format!("inward-notices-{}", std::process::id()));
+        std::fs::create_dir_all(&folder).unwrap();
+        let one = Linked { title: "one 1.0.0".into(), licence: "MIT OR Apache-2.0".into(), folder: folder.clone() };
+        assert!(licence_texts(&one).unwrap_err().to_string().starts_with("one 1.0.0"));
+        for (name, text) in [("LICENSE-APACHE", "a"), ("License-MIT.txt", "b"), ("NOTICE", "c"), ("README.md", "d")] {
+            std::fs::write(folder.join(name), text).unwrap();
+        }
+        assert_eq!(licence_texts(&one).unwrap(), ["b", "c"]);
+        std::fs::remove_dir_all(folder).unwrap();
+    }
 }

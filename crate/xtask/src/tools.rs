@@ -85,17 +85,16 @@ impl Tools {
     pub fn ready(workspace: &Workspace, install: bool) -> Result<Self> {
         let mut tools = Self::find(workspace);
         if install {
-            // The longest first: it runs beside everything else.
-            let compiling = if tools.geckodriver.is_none() { Some(compile_geckodriver(workspace)?) } else { None };
             install_rust(workspace)?;
             install_packages(workspace, &tools.lacking())?;
-            tools = Self { compiling, ..Self::find(workspace) };
-            if !scripts_ready(workspace) && tools.npm.is_some() {
-                let npm = tools.npm.as_deref().unwrap_or(Path::new("npm"));
+            tools = Self::find(workspace);
+            if let Some(npm) = tools.npm.as_ref().filter(|_| !scripts_ready(workspace)) {
                 let mut npm = workspace.command(npm);
-                run(npm
-                    .args(["ci", "--ignore-scripts", "--no-audit", "--no-fund"])
-                    .current_dir(workspace.root.join("tests")))?;
+                npm.current_dir(workspace.root.join("tests"));
+                run(npm.args(["ci", "--ignore-scripts", "--no-audit", "--no-fund"]))?;
+            }
+            if tools.geckodriver.is_none() {
+                tools.compiling = Some(compile_geckodriver(workspace)?);
             }
         }
         let missing = tools.missing(workspace)?;
@@ -103,7 +102,9 @@ impl Tools {
             let hint = if install { "" } else { "\n`cargo xtask test --install` installs what it may." };
             bail!("missing on this machine:\n{}{hint}", missing.join("\n"));
         }
-        tools.tell();
+        for (name, path) in tools.environment() {
+            println!("{name}={}", path.display());
+        }
         Ok(tools)
     }
 
@@ -129,12 +130,6 @@ impl Tools {
             ("INWARD_GECKODRIVER", &self.geckodriver),
         ];
         named.into_iter().filter_map(|(name, path)| path.as_deref().map(|path| (name, path))).collect()
-    }
-
-    fn tell(&self) {
-        for (name, path) in self.environment() {
-            println!("{name}={}", path.display());
-        }
     }
 
     /// Those of the package managers' programs that are not there.
