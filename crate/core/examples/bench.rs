@@ -1,0 +1,109 @@
+//! Times of the work that users wait for, as ratios to a calibration kernel of the same run: machines and their load differ.
+
+use inward_core::fit::Fitter;
+use inward_core::forward::LeadField;
+use inward_core::head::Shells;
+use inward_core::{MapReport, Request, Study, Vec3};
+use std::hint::black_box;
+use std::time::{Duration, Instant};
+
+fn main() {
+    let unit = calibration();
+    println!("calibration kernel (2 million divisions in sequence): {:.2} ms", unit.as_secs_f64() * 1e3);
+    for electrodes in [19, 32, 71, 128, 256] {
+        let directions = cap(electrodes);
+        let field = LeadField::new(&Shells::standard(), 88.0, directions.clone());
+        let images = field.images().map_or(0, |images| images.count());
+        let bound = field.images().map_or(0.0, |images| images.error_bound());
+        let p = Vec3::new(0.2, -0.3, 0.6);
+        row(electrodes, "lead field, series", unit, 50, || drop(black_box(field.exact(black_box(p)))));
+        row(electrodes, "lead field, images", unit, 2000, || drop(black_box(field.quick(black_box(p)))));
+        row(electrodes, "head set-up with grid", unit, 3, || {
+            drop(black_box(Fitter::new(LeadField::new(&Shells::standard(), 88.0, directions.clone()))));
+        });
+        let fitter = Fitter::new(field);
+        let maps = maps(&fitter, 60);
+        let fits = row(electrodes, "60 fits", unit, 3, || {
+            let maps: Vec<&[f64]> = maps.iter().map(|map| &map[..]).collect();
+            maps.chunks(inward_core::fit::BATCH).for_each(|batch| drop(black_box(fitter.fit_batch(batch))));
+        });
+        println!(
+            "{electrodes:4} electrodes  {:.0} fits/s; {images} images, error at most {bound:.1e}",
+            60.0 / fits.as_secs_f64()
+        );
+    }
+    picture(unit);
+}
+
+/// One map from text to picture.
+fn picture(unit: Duration) {
+    let sites = inward_core::electrode::standard_sites();
+    let table: String = sites
+        .iter()
+        .enumerate()
+        .map(|(i, site)| format!("{}\t{}\n", site.name, libm::sin(i as f64) + 3.0 * site.direction[0]))
+        .collect();
+    let request = Request { maps: table.as_bytes(), ..Request::default() };
+    row(sites.len(), "open, text to search", unit, 3, || drop(black_box(Study::open(&request))));
+    let Ok(study) = Study::open(&request) else { return };
+    if let Ok(MapReport::Fitted(map)) = study.fit(0) {
+        row(sites.len(), "picture of a fit", unit, 3, || drop(black_box(study.picture(&map))));
+    }
+}
+
+/// Shortest of several passes.
+fn row(electrodes: usize, what: &str, unit: Duration, repeats: u32, mut work: impl FnMut()) -> Duration {
+    let pass = |work: &mut dyn FnMut()| {
+        let start = Instant::now();
+        (0..repeats).for_each(|_| work());
+        start.elapsed() / repeats
+    };
+    let best = (0..5).map(|_| pass(&mut work)).min().unwrap_or_default();
+    let ratio = best.as_secs_f64() / unit.as_secs_f64();
+    println!("{electrodes:4} electrodes  {what:24} {:10.1} µs  {ratio:9.4} calibrations", best.as_secs_f64() * 1e6);
+    best
+}
+
+fn calibration() -> Duration {
+    let pass = || {
+        let start = Instant::now();
+        let mut x = black_box(1.5f64);
+        for _ in 0..2_000_000 {
+            x = 1.0 + 1.0 / x;
+        }
+        black_box(x);
+        start.elapsed()
+    };
+    (0..5).map(|_| pass()).min().unwrap_or_default()
+}
+
+/// Electrodes spread evenly from the top of the head to 20° below its equator.
+fn cap(count: usize) -> Vec<Vec3> {
+    (0..count)
+        .map(|i| {
+            let (z, angle) = (1.0 - 1.34 * (i as f64 + 0.5) / count as f64, 2.399_963 * i as f64);
+            let ring = (1.0 - z * z).sqrt();
+            Vec3::new(ring * libm::cos(angle), ring * libm::sin(angle), z)
+        })
+        .collect()
+}
+
+/// One dipole with noise, two dipoles, and noise alone in turn.
+fn maps(fitter: &Fitter, count: usize) -> Vec<Vec<f64>> {
+    let mut state = 7u64;
+    let mut draw = || {
+        state = state.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1_442_695_040_888_963_407);
+        (state >> 33) as f64 / (1u64 << 30) as f64 - 1.0
+    };
+    (0..count)
+        .map(|kind| {
+            let mut map: Vec<f64> = (0..fitter.field().count()).map(|_| 0.3 * draw()).collect();
+            for _ in 0..kind % 3 {
+                let position = Vec3::new(draw(), draw(), draw()) * 0.5;
+                let moment = Vec3::new(draw(), draw(), draw()) * 20.0;
+                map.iter_mut().zip(fitter.project(position, moment)).for_each(|(v, p)| *v += p);
+            }
+            map
+        })
+        .collect()
+}
