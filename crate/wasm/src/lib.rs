@@ -1,13 +1,16 @@
 //! The engine's WebAssembly bindings: requests in, reports out, as plain JavaScript values. The only place that knows
 //! JavaScript; everything it does is one call into `inward_core`.
 
+mod clock;
 mod picture;
 mod wire;
 
+use clock::Clock;
+use inward_core::fit::BATCH;
 use inward_core::{MapReport, Request, Settings, Study as Inner};
-use js_sys::Object;
+use js_sys::{Array, Object};
 use wasm_bindgen::prelude::*;
-use wire::{Inputs, plain, set, thrown};
+use wire::{Inputs, plain, set, thrown, words};
 
 /// Panic messages go to the console, where the calling script finds them for its copyable details.
 #[wasm_bindgen(start)]
@@ -75,10 +78,30 @@ impl Study {
         plain(&self.0.fit(index).map_err(|error| thrown(&error))?)
     }
 
+    /// Fits maps from `first` on until `milliseconds` have passed or none is left; at least a few. So a worker can
+    /// answer other messages in between.
+    #[wasm_bindgen(js_name = fitWithin)]
+    pub fn fit_within(&self, first: usize, milliseconds: f64) -> Result<Array, JsValue> {
+        let clock = Clock::start();
+        let reports = Array::new();
+        let mut next = first;
+        while next < self.0.count() {
+            let end = self.0.count().min(next + BATCH);
+            for report in self.0.fit_range(next..end).map_err(|error| thrown(&error))? {
+                reports.push(&plain(&report)?);
+            }
+            next = end;
+            if clock.milliseconds() >= milliseconds {
+                break;
+            }
+        }
+        Ok(reports)
+    }
+
     /// The fit of one map with what is named added to it.
     pub fn assess(&self, index: usize, what: JsValue) -> Result<JsValue, JsValue> {
         let what = serde_wasm_bindgen::from_value::<Vec<inward_core::report::Assessment>>(what)
-            .map_err(|problem| thrown(&Settings::unknown(problem)))?;
+            .map_err(|problem| thrown(&Settings::unknown(words(&problem))))?;
         plain(&self.0.assess(index, &what).map_err(|error| thrown(&error))?)
     }
 

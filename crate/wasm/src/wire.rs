@@ -40,11 +40,17 @@ fn settings(given: &JsValue) -> Result<Settings, JsValue> {
     }
     let unknown = |problem: String| thrown(&Settings::unknown(problem));
     let settings: Settings =
-        serde_wasm_bindgen::from_value(given.clone()).map_err(|problem| unknown(problem.to_string()))?;
+        serde_wasm_bindgen::from_value(given.clone()).map_err(|problem| unknown(words(&problem)))?;
     match unknown_key(given, &plain(&settings)?) {
         Some(key) => Err(unknown(format!("there is no setting `{key}`"))),
         None => Ok(settings),
     }
+}
+
+/// What `serde` says, without the name of the JavaScript class it is wrapped in.
+pub(crate) fn words(problem: &serde_wasm_bindgen::Error) -> String {
+    let text = problem.to_string();
+    text.strip_prefix("Error: ").unwrap_or(&text).to_owned()
 }
 
 /// The path of a key in `given` that `understood` lacks.

@@ -141,3 +141,38 @@ fn normalise(map: &[f64]) -> Option<(Vec<f64>, f64)> {
     centred.iter_mut().for_each(|v| *v /= length);
     Some((centred, length * largest))
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::head::Shells;
+
+    #[test]
+    fn alone_or_in_a_batch_the_bits_are_equal() {
+        for electrodes in [23, 71] {
+            let directions = (0..electrodes)
+                .map(|i| {
+                    let (z, angle) = (1.0 - 1.3 * (i as f64 + 0.5) / electrodes as f64, 2.4 * i as f64);
+                    let ring = (1.0 - z * z).sqrt();
+                    Vec3::new(ring * libm::cos(angle), ring * libm::sin(angle), z)
+                })
+                .collect();
+            let fitter = Fitter::new(LeadField::new(&Shells::standard(), 88.0, directions));
+            let mut maps: Vec<Vec<f64>> = (1..=BATCH + 5)
+                .map(|k| (0..electrodes).map(|i| libm::sin((k * i * i) as f64) + (i % (k + 1)) as f64).collect())
+                .collect();
+            maps[3] = vec![7.0; electrodes];
+            let together = fitter.fit_batch(&maps.iter().map(|map| &map[..]).collect::<Vec<_>>());
+            for (index, (map, fit)) in maps.iter().zip(&together).enumerate() {
+                assert_eq!(fitter.fit(map), *fit);
+                assert_eq!(fit.is_none(), index == 3);
+            }
+            let columns = Array2::from_shape_fn((electrodes, 9), |(i, k)| libm::sin((i * (k + 1)) as f64) as f32);
+            let energies = fitter.grid.explained(&columns);
+            for k in 0..9 {
+                let alone = fitter.grid.explained(&columns.slice(ndarray::s![.., k..=k]).to_owned());
+                assert!(alone.column(0).iter().eq(energies.column(k).iter()));
+            }
+        }
+    }
+}
