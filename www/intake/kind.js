@@ -5,6 +5,8 @@
 
 const LOOK_AT_LINES = 600;
 const SPHERE_TOLERANCE = 0.2;
+/** A label on a line of its own: short, and nothing that bytes read as text would give. */
+const WORD = /^(?!.*\ufffd)[\p{L}\p{N}\p{P}\p{S} ]{1,24}$/u;
 
 /** @param {string} line */
 function cellsOf(line) {
@@ -74,7 +76,7 @@ export function kindOf(text) {
     return named ? "electrodes" : "maps";
   }
   if (rows.every((cells) => cells.length === 1)) {
-    return rows.every(([cell]) => !isNumber(cell)) ? "electrodes" : "maps";
+    return rows.every(([cell]) => !isNumber(cell) && WORD.test(cell)) ? "electrodes" : "maps";
   }
   const positions = rows.filter((cells) => cells.length === 4 && !isNumber(cells[0]) && cells.slice(1).every(isNumber));
   if (positions.length < rows.length - 1) return "maps";

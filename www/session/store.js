@@ -1,4 +1,7 @@
-/** A value that can be watched. Listeners run after the change, in the order they came. */
+/**
+ * A value that can be watched. Listeners run after the change, in the order they came; one that throws does not keep
+ * the others from hearing of it.
+ */
 
 /**
  * @template {object} T
@@ -15,7 +18,16 @@ export function makeStore(initial) {
     /** @param {Partial<T>} patch */
     write(patch) {
       state = { ...state, ...patch };
-      for (const listener of listeners) listener(state);
+      /** @type {unknown[]} */
+      const errors = [];
+      for (const listener of listeners) {
+        try {
+          listener(state);
+        } catch (error) {
+          errors.push(error);
+        }
+      }
+      if (errors.length > 0) throw errors[0];
     },
 
     /**
