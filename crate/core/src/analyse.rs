@@ -14,7 +14,7 @@ use crate::report::{
     Assessment, DipoleReport, ElectrodeReport, FittedMap, HeadReport, Input, MapReport, Note, Program, Report,
     SearchReport, Settings, Sheet, Site,
 };
-use crate::scene::{Picture, PictureElectrode, Spline};
+use crate::scene::{Picture, Spline};
 use core::ops::Range;
 use sha2::{Digest, Sha256};
 use std::sync::OnceLock;
@@ -193,11 +193,7 @@ impl Study {
             .placement
             .electrodes
             .iter()
-            .map(|e| PictureElectrode {
-                label: e.label.to_string(),
-                direction: (e.position_mm - centre).unit().unwrap_or_default(),
-                used: e.used,
-            })
+            .map(|e| (e.label.to_string(), (e.position_mm - centre).unit().unwrap_or_default(), e.used))
             .collect();
         let layers = [&map.measured[..], &map.projected, &map.residual];
         let limit = map.scale_limit();

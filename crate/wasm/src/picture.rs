@@ -20,7 +20,7 @@ pub(crate) fn to_js(picture: &Picture) -> Object {
         .electrodes
         .iter()
         .map(|electrode| {
-            let [x, y] = picture.place(electrode);
+            let [x, y] = electrode.place;
             let label = electrode.label.as_str().into();
             object(&[("label", label), ("x", x.into()), ("y", y.into()), ("used", electrode.used.into())])
         })

@@ -35,7 +35,7 @@ struct Columns {
     xyz: Option<[usize; 3]>,
 }
 
-fn columns(table: &Table) -> Result<Columns, Error> {
+fn columns(table: &Table<'_>) -> Result<Columns, Error> {
     let lacks = |what: &str| {
         let line = table.header.as_ref().or(table.rows.first()).map_or(1, |row| row.line);
         Error::from(
@@ -53,10 +53,8 @@ fn columns(table: &Table) -> Result<Columns, Error> {
     if let [Some(x), Some(y), Some(z)] = named {
         return Ok(Columns { label, xyz: Some([x, y, z]) });
     }
-    let numeric = |column: &usize| {
-        *column != label
-            && table.rows.iter().any(|row| row.fields.get(*column).is_some_and(|field| number(field).is_some()))
-    };
+    let numeric =
+        |column: &usize| *column != label && table.rows.iter().any(|row| number(row.field(*column)).is_some());
     let mut others = (0..table.width).filter(numeric);
     match (others.next(), others.next(), others.next()) {
         (Some(x), Some(y), Some(z)) => Ok(Columns { label, xyz: Some([x, y, z]) }),
@@ -64,8 +62,8 @@ fn columns(table: &Table) -> Result<Columns, Error> {
     }
 }
 
-fn electrode(row: &Row, columns: &Columns) -> Result<Electrode, Error> {
-    let field = |column: usize| row.fields.get(column).map_or("", |field| field.as_str());
+fn electrode(row: &Row<'_>, columns: &Columns) -> Result<Electrode, Error> {
+    let field = |column: usize| row.field(column);
     let label = label(row, columns.label, INPUT)?;
     let mut position = None;
     if let Some(xyz) = columns.xyz
@@ -75,7 +73,7 @@ fn electrode(row: &Row, columns: &Columns) -> Result<Electrode, Error> {
         for (coordinate, column) in coordinates.iter_mut().zip(xyz) {
             *coordinate = number(field(column)).ok_or_else(|| {
                 let place = Place { label: Some(label.to_string()), ..Place::field(INPUT, row.line, column + 1) };
-                Finding::new(Code::NumberExpected).at(place).with("found", excerpt(field(column)))
+                Finding::new(Code::NumberExpected).at(place).with("found", field(column))
             })?;
         }
         position = Some(Vec3(coordinates));
@@ -84,8 +82,8 @@ fn electrode(row: &Row, columns: &Columns) -> Result<Electrode, Error> {
 }
 
 /// The label in a row.
-pub(super) fn label(row: &Row, column: usize, input: &'static str) -> Result<Label, Error> {
-    let label = Label::new(row.fields.get(column).map_or("", |field| field.as_str()));
+pub(super) fn label(row: &Row<'_>, column: usize, input: &'static str) -> Result<Label, Error> {
+    let label = Label::new(row.field(column));
     if label.as_str().is_empty() {
         return Err(Finding::new(Code::TableColumns)
             .at(Place::field(input, row.line, column + 1))
@@ -111,12 +109,4 @@ pub(super) fn refuse_duplicates<'a>(
         }
     }
     Ok(())
-}
-
-/// The beginning of a field, for messages.
-pub(super) fn excerpt(field: &str) -> String {
-    match field.char_indices().nth(40) {
-        Some((end, _)) => format!("{}…", field.get(..end).unwrap_or_default()),
-        None => field.to_owned(),
-    }
 }

@@ -1,4 +1,4 @@
-use super::electrodes::{excerpt, label, refuse_duplicates};
+use super::electrodes::{label, refuse_duplicates};
 use super::table::{LABEL_NAMES, is_missing, number};
 use super::{MOST_ELECTRODES, MOST_MAPS, Table, decode};
 use crate::finding::{Code, Error, Finding, Place};
@@ -35,9 +35,10 @@ pub fn read_maps(bytes: &[u8]) -> Result<Maps, Error> {
             return Err(Finding::new(code).at(Place::input(INPUT)).with("found", found).with("most", most).into());
         }
     }
-    let name = |(index, &column): (usize, &usize)| {
-        let field = table.header.as_ref().and_then(|header| header.fields.get(column));
-        field.filter(|name| !name.is_empty()).cloned().unwrap_or_else(|| format!("map {}", index + 1))
+    let name = |(index, &column): (usize, &usize)| match table.header.as_ref().map_or("", |header| header.field(column))
+    {
+        "" => format!("map {}", index + 1),
+        name => name.to_owned(),
     };
     let names: Vec<String> = columns.iter().enumerate().map(name).collect();
     let labels = table.rows.iter().map(|row| label(row, label_column, INPUT)).collect::<Result<Vec<_>, _>>()?;
@@ -47,7 +48,7 @@ pub fn read_maps(bytes: &[u8]) -> Result<Maps, Error> {
     let mut values = Array2::from_elem((labels.len(), columns.len()), f64::NAN);
     for ((row, label), mut out) in table.rows.iter().zip(&labels).zip(values.rows_mut()) {
         for ((&column, value), name) in columns.iter().zip(out.iter_mut()).zip(&names) {
-            let field = row.fields.get(column).map_or("", |field| field.as_str());
+            let field = row.field(column);
             if is_missing(field) {
                 continue;
             }
@@ -57,7 +58,7 @@ pub fn read_maps(bytes: &[u8]) -> Result<Maps, Error> {
                     map: Some(name.clone()),
                     ..Place::field(INPUT, row.line, column + 1)
                 };
-                Finding::new(Code::NumberExpected).at(place).with("found", excerpt(field))
+                Finding::new(Code::NumberExpected).at(place).with("found", field)
             })?;
         }
     }

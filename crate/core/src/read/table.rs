@@ -1,27 +1,35 @@
 use crate::finding::{Code, Error, Finding, Place};
+use std::borrow::Cow;
 
 /// A table of text fields.
 #[derive(Clone, Debug, PartialEq)]
-pub struct Table {
+pub struct Table<'a> {
     /// Names of the columns, where the first row holds names.
-    pub header: Option<Row>,
+    pub header: Option<Row<'a>>,
     /// Rows of equally many fields.
-    pub rows: Vec<Row>,
+    pub rows: Vec<Row<'a>>,
     /// Number of columns.
     pub width: usize,
 }
 
 /// A line of a table.
 #[derive(Clone, Debug, PartialEq)]
-pub struct Row {
+pub struct Row<'a> {
     /// Line in the text, from 1.
     pub line: usize,
     /// Its fields.
-    pub fields: Vec<Field>,
+    pub fields: Vec<Field<'a>>,
 }
 
-/// A field without the blanks and quotes around it.
-pub type Field = String;
+/// A field without the blanks and quotes around it: a piece of the text unless quotes had to be undone.
+pub type Field<'a> = Cow<'a, str>;
+
+impl Row<'_> {
+    /// The text of a field; empty where the row has none.
+    pub fn field(&self, column: usize) -> &str {
+        self.fields.get(column).map_or("", AsRef::as_ref)
+    }
+}
 
 #[derive(Clone, Copy, PartialEq)]
 enum Delimiter {
@@ -29,7 +37,7 @@ enum Delimiter {
     Blanks,
 }
 
-impl Table {
+impl<'a> Table<'a> {
     /// Splits text into rows and fields. The delimiter is the first of tab, semicolon and comma that stands in every
     /// line of the first twenty outside quotes; otherwise runs of blanks. Empty lines and lines that begin with `#` or
     /// `%` are passed over. The first row is a header when it holds no number and either
@@ -37,8 +45,8 @@ impl Table {
     ///
     /// # Errors
     /// `table-ragged` at the first line with another number of fields than the first one.
-    pub fn read(text: &str, input: &'static str) -> Result<Self, Error> {
-        let lines: Vec<(usize, &str)> = text
+    pub fn read(text: &'a str, input: &'static str) -> Result<Self, Error> {
+        let lines: Vec<(usize, &'a str)> = text
             .split('\n')
             .flat_map(|line| line.strip_suffix('\r').unwrap_or(line).split('\r'))
             .enumerate()
@@ -80,8 +88,9 @@ impl Table {
             let fields = self.rows.iter().filter_map(|row| row.fields.get(column));
             fields.filter(|field| !is_missing(field) && number(field).is_none()).count()
         };
-        let most = (0..self.width).reduce(|best, next| if words(next) > words(best) { next } else { best })?;
-        (words(most) > 0).then_some(most)
+        let counts: Vec<usize> = (0..self.width).map(words).collect();
+        let most = counts.iter().copied().max().filter(|&most| most > 0)?;
+        counts.iter().position(|&count| count == most)
     }
 }
 
@@ -97,8 +106,8 @@ pub(super) fn is_missing(field: &str) -> bool {
     ["", "n/a", "na", "nan", "-"].iter().any(|word| field.eq_ignore_ascii_case(word))
 }
 
-fn is_header(first: &Row, rest: &[Row]) -> bool {
-    let numbers = |row: &Row| row.fields.iter().filter(|field| number(field).is_some()).count();
+fn is_header(first: &Row<'_>, rest: &[Row<'_>]) -> bool {
+    let numbers = |row: &Row<'_>| row.fields.iter().filter(|field| number(field).is_some()).count();
     let named = first.fields.iter().any(|field| KNOWN_NAMES.iter().any(|name| field.eq_ignore_ascii_case(name)));
     numbers(first) == 0 && (named || rest.iter().any(|row| numbers(row) > 0))
 }
@@ -117,7 +126,15 @@ fn delimiter(lines: &[(usize, &str)]) -> Delimiter {
         .map_or(Delimiter::Blanks, Delimiter::Mark)
 }
 
-fn split(line: &str, delimiter: Delimiter) -> Vec<Field> {
+fn split(line: &str, delimiter: Delimiter) -> Vec<Field<'_>> {
+    match delimiter {
+        _ if line.contains('"') => split_quoted(line, delimiter),
+        Delimiter::Mark(mark) => line.split(mark).map(|field| field.trim().into()).collect(),
+        Delimiter::Blanks => line.split_whitespace().map(Into::into).collect(),
+    }
+}
+
+fn split_quoted(line: &str, delimiter: Delimiter) -> Vec<Field<'_>> {
     let mut fields = Vec::new();
     let (mut field, mut quoted, mut begun) = (String::new(), false, false);
     let mut characters = line.chars().peekable();
@@ -129,7 +146,7 @@ fn split(line: &str, delimiter: Delimiter) -> Vec<Field> {
             };
         if ends {
             if begun || delimiter != Delimiter::Blanks {
-                fields.push(core::mem::take(&mut field).trim().to_owned());
+                fields.push(core::mem::take(&mut field).trim().to_owned().into());
             }
             begun = false;
         } else if character == '"' && quoted && characters.peek() == Some(&'"') {
@@ -143,7 +160,7 @@ fn split(line: &str, delimiter: Delimiter) -> Vec<Field> {
         }
     }
     if begun || delimiter != Delimiter::Blanks {
-        fields.push(field.trim().to_owned());
+        fields.push(field.trim().to_owned().into());
     }
     fields
 }
@@ -156,8 +173,8 @@ mod tests {
     fn splits_by_what_stands_in_every_line() {
         for text in ["a\t1\t2\nb\t3\t4", "a;1;2\r\nb;3;4\r\n", "a, 1,2\nb,3 ,4\n\n", "  a   1 2\n# note\nb 3\t4 "] {
             let table = Table::read(text, "maps").ok().filter(|t| t.header.is_none());
-            let fields: Option<Vec<Vec<String>>> =
-                table.map(|table| table.rows.into_iter().map(|row| row.fields).collect());
+            let fields: Option<Vec<Vec<String>>> = table
+                .map(|table| table.rows.iter().map(|row| row.fields.iter().map(|f| f.to_string()).collect()).collect());
             assert_eq!(
                 fields,
                 Some(vec![vec!["a".into(), "1".into(), "2".into()], vec!["b".into(), "3".into(), "4".into()]]),

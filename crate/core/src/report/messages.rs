@@ -7,7 +7,7 @@ use crate::finding::{Code, Finding, Place, Value};
 pub fn message(finding: &Finding) -> String {
     let value = |name: &str| match finding.value(name) {
         None => String::new(),
-        Some(Value::Text(text)) => text.clone(),
+        Some(Value::Text(text)) => clipped(text),
         Some(Value::Number(number)) => significant(*number, 3),
         Some(Value::Count(count)) => count.to_string(),
         Some(Value::List(list)) => listed(list),
@@ -190,10 +190,18 @@ fn input_name(place: Option<&Place>) -> &'static str {
     }
 }
 
+/// The beginning of a text that may be of any length.
+fn clipped(text: &str) -> String {
+    match text.char_indices().nth(60) {
+        Some((end, _)) => format!("{}…", &text[..end]),
+        None => text.to_owned(),
+    }
+}
+
 /// At most twelve words, and how many more there are.
 fn listed(words: &[String]) -> String {
     const MOST: usize = 12;
-    let shown = words.iter().take(MOST).map(String::as_str).collect::<Vec<_>>().join(", ");
+    let shown = words.iter().take(MOST).map(|word| clipped(word)).collect::<Vec<_>>().join(", ");
     if words.len() > MOST { format!("{shown} and {} more", words.len() - MOST) } else { shown }
 }
 

@@ -65,8 +65,8 @@ pub struct Ring {
 pub struct PictureElectrode {
     /// Its label.
     pub label: String,
-    /// Direction from the centre: x right, y front, z up.
-    pub direction: Vec3,
+    /// Its place.
+    pub place: DiscPoint,
     /// Whether the fit uses it.
     pub used: bool,
 }
@@ -78,18 +78,23 @@ const SIZE: usize = 96;
 const LEVELS: usize = 5;
 
 impl Picture {
-    /// Draws the values at the used electrodes on a scale of −limit … limit.
+    /// Draws the values at the used electrodes on a scale of −limit … limit. `electrodes` are labels, directions from the
+    /// centre and whether the electrode is used.
     pub fn new(
         spline: &Spline,
-        electrodes: Vec<PictureElectrode>,
+        electrodes: Vec<(String, Vec3, bool)>,
         [measured, projected, residual]: [&[f64]; 3],
         limit: f64,
         position: Vec3,
         direction: Vec3,
     ) -> Self {
-        let disc = Disc::holding(electrodes.iter().map(|e| e.direction));
+        let disc = Disc::holding(electrodes.iter().map(|(_, direction, _)| *direction));
+        let electrodes: Vec<PictureElectrode> = electrodes
+            .into_iter()
+            .map(|(label, direction, used)| PictureElectrode { label, place: disc.project(direction), used })
+            .collect();
         let used: Vec<usize> = (0..electrodes.len()).filter(|&i| electrodes[i].used).collect();
-        let points: Vec<DiscPoint> = used.iter().map(|&i| disc.project(electrodes[i].direction)).collect();
+        let points: Vec<DiscPoint> = used.iter().map(|&i| electrodes[i].place).collect();
         let outline = hull(&points);
 
         let coefficients = [measured, projected, residual].map(|map| spline.coefficients(map));
@@ -136,11 +141,6 @@ impl Picture {
             axis: [direction[0], direction[1]],
             electrodes,
         }
-    }
-
-    /// Where an electrode lies on the disc.
-    pub fn place(&self, electrode: &PictureElectrode) -> DiscPoint {
-        Disc::holding(self.electrodes.iter().map(|e| e.direction)).project(electrode.direction)
     }
 }
 
