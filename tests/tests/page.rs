@@ -32,7 +32,11 @@ fn answered(browser: Browser) -> Page {
     page
 }
 
-/// Share of the first map's variance in the report, as the sentence and the table write it.
+fn radius(report: &Value) -> f64 {
+    report["head"]["radius_mm"].as_f64().expect("a number")
+}
+
+/// Share of a map's variance that its dipole explains.
 fn explained(report: &Value, map: usize) -> f64 {
     report["maps"][map]["variance_explained"].as_f64().expect("a number")
 }
@@ -63,7 +67,7 @@ fn labels_alone_are_answered_with_a_note(browser: Browser) {
     page.paste("#maps-text", &one_map(1));
     page.wait_for_answer();
     let report = page.download_report();
-    assert_eq!(report["head"]["radius_mm"], json!(88.0));
+    assert_eq!(radius(&report), 88.0);
     let codes: Vec<&str> =
         report["notes"].as_array().unwrap().iter().filter_map(|note| note["code"].as_str()).collect();
     assert!(codes.contains(&"standard-positions"), "{codes:?}");
@@ -89,11 +93,9 @@ fn files_dropped_one_by_one_are_told_apart(browser: Browser) {
     let page = Page::open(browser);
     page.drop_files(&[DroppedFile { name: "a.txt", text: &maps() }]);
     page.wait_for_answer();
-    assert_eq!(page.download_report()["head"]["radius_mm"], json!(88.0), "standard positions until a table comes");
+    assert_eq!(radius(&page.download_report()), 88.0, "standard positions until a table comes");
     page.drop_files(&[DroppedFile { name: "b.txt", text: &electrodes() }]);
-    page.until("the table's head", |page| {
-        page.state() == "answered" && page.download_report()["head"]["radius_mm"] != json!(88.0)
-    });
+    page.until("the table's head", |page| page.state() == "answered" && radius(&page.download_report()) != 88.0);
 }
 
 fn a_paste_outside_the_fields_is_answered(browser: Browser) {
@@ -255,8 +257,8 @@ fn the_last_of_two_quick_pastes_wins(browser: Browser) {
     assert_eq!(page.download_report()["maps"][0]["name"], "left tap");
 }
 
-/// Lets one fit trap: its call finds the engine's memory shut away, as after a bug. Armed by a map named `trapped`.
-const TRAP: &str = include_str!("trap.js");
+/// Lets the fit of a map named `trapped` trap.
+const TRAP: &str = concat!(include_str!("../js/trap.js"), include_str!("../js/trap_by_name.js"));
 
 fn a_trap_is_a_failure_and_the_next_map_works(browser: Browser) {
     let folder = Folder::fresh("trap");
@@ -301,11 +303,11 @@ fn everything_works_by_keyboard(browser: Browser) {
         page.state() == "answered"
             && page.value("return document.querySelector('#maps-text').value.trim().split('\\n').length") == json!(15)
     });
+    focus("electrodes-text");
     focus("download-json");
     let file = page.session().downloads().join("inward-report.json");
     page.session().press("\u{E007}").unwrap();
     page.until("the download by keyboard", |_| file.exists());
-    focus("electrodes-text");
 }
 
 fn no_accessibility_findings(browser: Browser) {
