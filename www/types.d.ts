@@ -128,6 +128,8 @@ interface Sheet {
   sentence: string;
   rows: SheetRow[];
   alt: Record<MapRole, string>;
+  /** The ends of the colour scale in words: without a sign, and the unit. */
+  scale: { limit: string; unit: string };
   picture: Picture;
 }
 
@@ -139,6 +141,8 @@ interface GlueStudy {
   notes(): ReportNote[];
   preamble(): InwardReport;
   fit(index: number): ReportMap;
+  /** Fits from `first` on for about so long, a few maps at least. */
+  fitWithin(first: number, milliseconds: number): ReportMap[];
   assess(index: number, what: string[]): object;
   sheet(index: number): Sheet;
   free(): void;
@@ -157,7 +161,7 @@ declare function wasmGlue(): Glue;
 /** The engine itself, gzip and base64; put before the module by the build. */
 declare const WASM_GZIP_BASE64: string;
 
-/** A study as scripts see it; the last three are what the page's worker uses. */
+/** A study as scripts see it; what stands after `close` is for the page's worker. */
 interface Study {
   readonly head: object;
   readonly electrodes: object[];
@@ -165,9 +169,10 @@ interface Study {
   readonly count: number;
   fit(index: number): ReportMap;
   assess(index: number, what: string[]): object;
+  close(): void;
+  fitWithin(first: number, milliseconds: number): ReportMap[];
   preamble(): InwardReport;
   sheet(index: number): Sheet;
-  close(): void;
 }
 
 interface Engine {

@@ -110,13 +110,14 @@ export function makeEngine(instantiate) {
       ...facts,
       fit: (index) => use((opened) => opened.fit(index)),
       assess: (index, what) => use((opened) => opened.assess(index, what)),
-      preamble: () => use((opened) => opened.preamble()),
-      sheet: (index) => use((opened) => opened.sheet(index)),
       close() {
         if (!closed && study !== null && owner === glue) study.free();
         closed = true;
         study = null;
       },
+      fitWithin: (first, milliseconds) => use((opened) => opened.fitWithin(first, milliseconds)),
+      preamble: () => use((opened) => opened.preamble()),
+      sheet: (index) => use((opened) => opened.sheet(index)),
     };
   }
 

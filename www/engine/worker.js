@@ -7,7 +7,7 @@ import { makeEngine } from "./engine.js";
 import { faultOf } from "./fault.js";
 import { reportHead, reportMap, reportTail } from "../export/json.js";
 
-const SLICE_MS = 50;
+const SLICE_MS = 40;
 
 /** @type {WebAssembly.Module | null} */
 let workerModule = null;
@@ -56,8 +56,8 @@ function summaryOf(map) {
 }
 
 /**
- * Fits every map in turn and hands each to `take`. The first slice ends with the first fitted map, so that an
- * answer can be shown at once.
+ * Fits every map in turn and hands each to `take`. Slices are as short as can be until one map is fitted, so
+ * that an answer can be shown at once.
  * @param {number} id
  * @param {number} key
  * @param {Study} study
@@ -65,22 +65,15 @@ function summaryOf(map) {
  */
 async function eachMap(id, key, study, take) {
   const total = study.count;
-  let fitted = 0;
+  let found = false;
   let done = 0;
   while (done < total) {
     if (studies.get(key) !== study) throw new DOMException("the study was closed meanwhile", "AbortError");
-    const until = performance.now() + SLICE_MS;
-    /** @type {MapSummary[]} */
-    const maps = [];
-    let first = false;
-    while (done < total && !first && (maps.length === 0 || performance.now() < until)) {
-      const map = study.fit(done);
-      done += 1;
-      take(map);
-      const summary = summaryOf(map);
-      maps.push(summary);
-      if (!("error" in summary)) first = ++fitted === 1;
-    }
+    const fitted = study.fitWithin(done, found ? SLICE_MS : 0);
+    done += fitted.length;
+    fitted.forEach(take);
+    const maps = fitted.map(summaryOf);
+    found ||= maps.some((map) => "rv" in map);
     self.postMessage({ id, progress: { done, total, maps } });
     await breathe();
   }

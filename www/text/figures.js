@@ -13,13 +13,6 @@ export function percentText(fraction) {
   return `${(100 * fraction).toFixed(1)}${NARROW_SPACE}%`;
 }
 
-/** Two digits, with a sign: an end of the colour scale. @param {number} value */
-export function limitText(value) {
-  const size = Math.abs(value);
-  const digits = size >= 10000 || (size > 0 && size < 0.001) ? size.toExponential(1) : String(Number(size.toPrecision(2)));
-  return `${value < 0 ? MINUS : "+"}${digits.replace("e-", `e${MINUS}`).replace("e+", "e")}`;
-}
-
 /** @param {number} factor */
 export function stretchText(factor) {
   return `×${NARROW_SPACE}${Number(factor.toPrecision(2))}`;

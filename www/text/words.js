@@ -24,7 +24,6 @@ const WORDS = {
   "clear": "Clear",
   "unit": "Unit of the map",
   "unit.relative": "relative",
-  "unit.none": "(relative)",
   "unit.uV": "µV",
   "unit.V": "V",
   "slot.none": "none yet",
@@ -50,6 +49,7 @@ const WORDS = {
   "choice": "Map of the table",
   "choice.previous": "Previous map",
   "choice.next": "Next map",
+  "choice.number": "Number in the table",
   "choice.unfitted": "not fitted",
 
   "answer": "Answer",
@@ -104,6 +104,11 @@ export function progressText(done, total) {
   return `${done.toLocaleString("en-GB")} of ${total.toLocaleString("en-GB")} maps fitted`;
 }
 
+/** @param {number} count @param {boolean} later */
+export function furtherText(count, later) {
+  return `${count.toLocaleString("en-GB")} ${later ? "later" : "earlier"} maps`;
+}
+
 /** @param {string} subject what the answer is for */
 export function keptText(subject) {
   return `The previous answer (${subject}) is still shown below.`;
@@ -120,11 +125,6 @@ export function subjectText({ names, maps, chosen }) {
 export function scaleText(stretch) {
   const shared = stretch === "" ? word("scale.shared") : `${word("scale.shared")}; ${word("map.residual")} drawn ${stretch}`;
   return `${shared}. ${word("scale.lines")}.`;
-}
-
-/** @param {MapUnit} unit */
-export function unitText(unit) {
-  return word(unit === "relative" ? "unit.none" : `unit.${unit}`);
 }
 
 /** Writes the page's own sentences where the template names their codes. @param {ParentNode} root */

@@ -1,12 +1,22 @@
-/** Which map of the table is shown: a list with each map's residual variance, and a step to either side. */
+/**
+ * Which map of the table is shown: a list with each map's residual variance, and a step to either side. A long table
+ * is listed in blocks (browsers stall over lists of many thousand entries) and a map can be asked for by its number.
+ */
 
 import { percentText } from "../text/figures.js";
-import { word } from "../text/words.js";
+import { furtherText, word } from "../text/words.js";
 import { make, need } from "./element.js";
+
+const BLOCK = 500;
 
 /** @param {MapSummary} map */
 function optionText(map) {
   return `${map.name} · ${"rv" in map ? `RV ${percentText(map.rv)}` : word("choice.unfitted")}`;
+}
+
+/** @param {number} index @param {string} text */
+function optionElement(index, text) {
+  return make("option", text, { value: String(index) });
 }
 
 /** @param {import("../session/session.js").Session} session */
@@ -14,26 +24,43 @@ export function showChoice(session) {
   const list = need("map-choice", HTMLSelectElement);
   const previous = need("map-previous", HTMLButtonElement);
   const next = need("map-next", HTMLButtonElement);
-  /** The answer whose maps are listed. @type {number | null} */
-  let listed = null;
+  const number = need("map-number", HTMLInputElement);
+  /** What is listed: the answer's key, and the maps from one index up to another. */
+  let listed = { key: 0, from: 0, to: 0 };
 
-  list.addEventListener("change", () => session.choose(list.selectedIndex));
-  previous.addEventListener("click", () => session.choose(list.selectedIndex - 1));
-  next.addEventListener("click", () => session.choose(list.selectedIndex + 1));
+  list.addEventListener("change", () => session.choose(Number(list.value)));
+  previous.addEventListener("click", () => session.choose((session.read().answer?.chosen ?? 0) - 1));
+  next.addEventListener("click", () => session.choose((session.read().answer?.chosen ?? 0) + 1));
+  number.addEventListener("change", () => session.choose(number.valueAsNumber - 1));
+
+  /** @param {Answer} answer */
+  function listMaps({ key, maps, count, chosen }) {
+    const from = BLOCK * Math.floor(chosen / BLOCK);
+    const end = Math.min(from + BLOCK, count);
+    if (key !== listed.key || from !== listed.from || listed.to > maps.length) {
+      list.replaceChildren();
+      if (from > 0) list.append(optionElement(from - 1, furtherText(from, false)));
+      if (end < count) list.append(optionElement(end, furtherText(count - end, true)));
+      listed = { key, from, to: from };
+    }
+    const last = end < count ? list.lastElementChild : null;
+    for (; listed.to < Math.min(end, maps.length); listed.to++) {
+      list.insertBefore(optionElement(listed.to, optionText(maps[listed.to])), last);
+    }
+    list.value = String(chosen);
+  }
 
   session.watch(
     (state) => state.answer,
     (answer) => {
       need("choice", HTMLElement).hidden = answer === null || answer.count < 2;
       if (answer === null) return;
-      if (answer.key !== listed || list.length > answer.maps.length) list.length = 0;
-      listed = answer.key;
-      const added = document.createDocumentFragment();
-      for (const map of answer.maps.slice(list.length)) added.append(make("option", optionText(map)));
-      list.append(added);
-      list.selectedIndex = answer.chosen;
+      listMaps(answer);
       previous.disabled = answer.chosen === 0;
       next.disabled = answer.chosen >= answer.maps.length - 1;
+      number.hidden = answer.count <= BLOCK;
+      number.max = String(answer.maps.length);
+      if (document.activeElement !== number) number.value = String(answer.chosen + 1);
     },
   );
 }

@@ -3,8 +3,8 @@
 import { paintBar } from "../draw/bar.js";
 import { surroundingsOf } from "../draw/canvas.js";
 import { paintDisc } from "../draw/disc.js";
-import { limitText, stretchText } from "../text/figures.js";
-import { scaleText, unitText, word } from "../text/words.js";
+import { stretchText } from "../text/figures.js";
+import { scaleText, word } from "../text/words.js";
 import { need } from "./element.js";
 
 /** @type {MapRole[]} */
@@ -29,13 +29,12 @@ export function showMaps(session) {
 
   session.watch(
     (state) => state.answer?.sheet,
-    (sheet, state) => {
+    (sheet) => {
       if (!sheet) return;
-      const { picture, alt } = sheet;
+      const { picture, alt, scale } = sheet;
       for (const { role, canvas } of discs) canvas.setAttribute("aria-label", alt[role]);
-      const unit = unitText(state.answer?.preamble.settings.mapUnit ?? "relative");
-      need("scale-low", HTMLElement).textContent = limitText(-picture.limit);
-      need("scale-high", HTMLElement).textContent = `${limitText(picture.limit)} ${unit}`;
+      need("scale-low", HTMLElement).textContent = `\u2212${scale.limit}`;
+      need("scale-high", HTMLElement).textContent = `+${scale.limit} ${scale.unit}`;
       const stretched = picture.stretch === 1 ? "" : stretchText(picture.stretch);
       need("stretch", HTMLElement).textContent = stretched;
       need("scale-words", HTMLElement).textContent = scaleText(stretched);
