@@ -77,8 +77,8 @@ impl Images {
         Self { images, error_bound }
     }
 
-    /// Derivatives of Φ, from those of 1/D and −ln E with E = 1 − s + D.
-    pub(super) fn potential(&self, u: f64, s: &[f64; LANES]) -> Potential {
+    /// Derivatives of Φ, from those of 1/D and −ln E with E = 1 − s + D; the first ones only unless `HIGHER`.
+    pub(super) fn potential<const HIGHER: bool>(&self, u: f64, s: &[f64; LANES]) -> Potential {
         let mut sum = Potential::default();
         for image in &self.images {
             let Image { mu, alpha, beta } = *image;
@@ -91,11 +91,13 @@ impl Images {
                 let a = 1.0 / d;
                 let b = 1.0 / (1.0 - s + d);
                 let (a2, ab) = (a * a, a * b);
-                let (a3, b2) = (a2 * a, b * b);
-                let a5 = a3 * a2;
-                let ab2 = ab * b;
+                let a3 = a2 * a;
                 sum.s[lane] += alpha * a3 + beta * (b + ab);
                 sum.u[lane] -= 0.5 * mu * (alpha * a3 + beta * ab);
+                if !HIGHER {
+                    continue;
+                }
+                let (a5, b2, ab2) = (a3 * a2, b * b, ab * b);
                 sum.us[lane] -= 0.5 * mu2 * (alpha * 3.0 * a5 + beta * (a3 * b + ab2 + ab2 * a));
                 sum.uu[lane] += 0.25 * mu3 * (alpha * 3.0 * a5 + beta * (a3 * b + ab * ab));
                 sum.uus[lane] += 0.25

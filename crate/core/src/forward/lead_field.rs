@@ -94,7 +94,7 @@ impl LeadField {
 
     /// The same by the quick evaluation, or by the series where there is none.
     pub fn quick(&self, position: Vec3) -> Array2<f64> {
-        self.matrix(&self.local(position))
+        self.matrix(&self.local_by(position, self.images.as_ref(), 0))
     }
 
     /// Derivatives of the lead field: for each electrode the symmetric matrix ∂Lᵢ/∂pⱼ in µV per nAm and scalp radius,
@@ -122,6 +122,7 @@ impl LeadField {
         self.local_by(position, self.images.as_ref(), 2)
     }
 
+    /// By images or, without, by the series; derivatives of the lead field up to this order, 0 or 2.
     fn local_by(&self, position: Vec3, images: Option<&Images>, order: usize) -> Local {
         let u = position.dot(position);
         let terms = if images.is_some() { 0 } else { self.series.terms(u.sqrt(), order) };
@@ -131,7 +132,8 @@ impl LeadField {
             .map(|[x, y, z]| {
                 let s = core::array::from_fn(|l| x[l] * position[0] + y[l] * position[1] + z[l] * position[2]);
                 match images {
-                    Some(images) => images.potential(u, &s),
+                    Some(images) if order == 0 => images.potential::<false>(u, &s),
+                    Some(images) => images.potential::<true>(u, &s),
                     None => self.series.potential(terms, u, &s),
                 }
             })
@@ -142,9 +144,10 @@ impl LeadField {
     fn matrix(&self, local: &Local) -> Array2<f64> {
         let mut rows = Array2::zeros((self.count(), 3));
         for (index, e) in self.directions.iter().enumerate() {
-            let t = local.terms(index, *e);
+            let (block, lane) = (&local.potentials[index / LANES], index % LANES);
             for axis in 0..3 {
-                rows[[index, axis]] = self.scale * (t.s * e[axis] + 2.0 * t.u * local.position[axis]);
+                rows[[index, axis]] =
+                    self.scale * (block.s[lane] * e[axis] + 2.0 * block.u[lane] * local.position[axis]);
             }
         }
         rows
@@ -167,13 +170,11 @@ pub(crate) struct Terms {
 }
 
 impl Local {
-    pub(crate) fn terms(&self, index: usize, direction: Vec3) -> Terms {
-        self.lane(index / LANES, index % LANES, self.position.dot(self.position), self.position.dot(direction))
-    }
-
-    /// Of lane `lane` in block `block`, where u and s are known.
+    /// Of one electrode.
     #[inline]
-    pub(crate) fn lane(&self, block: usize, lane: usize, u: f64, s: f64) -> Terms {
+    pub(crate) fn terms(&self, index: usize, direction: Vec3) -> Terms {
+        let (block, lane) = (index / LANES, index % LANES);
+        let (u, s) = (self.position.dot(self.position), self.position.dot(direction));
         let t = &self.potentials[block];
         let (du, us, uu, uus, uuu) = (t.u[lane], t.us[lane], t.uu[lane], t.uus[lane], t.uuu[lane]);
         let uss = -(10.0 * uu + 4.0 * u * uuu + 4.0 * s * uus);
