@@ -16,7 +16,7 @@ export function showAnswer(session) {
   const hint = need("sentence-hint", HTMLElement);
 
   session.watch(
-    (state) => state.answer === null && state.phase !== "failed",
+    (state) => state.answer === null,
     (empty) => {
       need("empty", HTMLElement).hidden = !empty;
     },

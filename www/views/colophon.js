@@ -13,7 +13,7 @@ export function showColophon(session) {
   );
   const notices = need("notices", HTMLDetailsElement);
   notices.addEventListener("toggle", () => {
-    const carried = document.querySelector("script#notices-text, script#notices");
+    const carried = document.getElementById("notices-text");
     need("notices-shown", HTMLElement).textContent = carried?.textContent?.trim() ?? "";
   });
 }
