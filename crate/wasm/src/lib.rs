@@ -27,6 +27,13 @@ pub fn program() -> Result<JsValue, JsValue> {
     plain(&inward_core::Program { name: "Inward", version: env!("CARGO_PKG_VERSION"), build: BUILD })
 }
 
+/// Whether the content of a file, a string or bytes, is a table of `electrodes` or of `maps`.
+#[wasm_bindgen(js_name = kindOf)]
+pub fn kind_of(content: JsValue) -> Result<JsValue, JsValue> {
+    let bytes = wire::bytes(&content, "content")?.unwrap_or_default();
+    plain(&inward_core::read::kind(&bytes))
+}
+
 /// The report of `{ electrodes?, maps, settings? }`.
 #[wasm_bindgen]
 pub fn analyse(request: JsValue) -> Result<JsValue, JsValue> {

@@ -68,7 +68,7 @@ fn unknown_key(given: &JsValue, understood: &JsValue) -> Option<String> {
 }
 
 /// The content of an input, a string or bytes; `None` where it is left out.
-fn bytes(value: &JsValue, name: &str) -> Result<Option<Vec<u8>>, JsValue> {
+pub(crate) fn bytes(value: &JsValue, name: &str) -> Result<Option<Vec<u8>>, JsValue> {
     if value.is_undefined() || value.is_null() {
         Ok(None)
     } else if let Some(text) = value.as_string() {

@@ -2,11 +2,13 @@
 #![deny(clippy::unwrap_used, clippy::expect_used, clippy::indexing_slicing)]
 
 mod electrodes;
+mod kind;
 mod maps;
 mod table;
 mod text;
 
 pub use electrodes::read_electrodes;
+pub use kind::{Kind, kind};
 pub use maps::read_maps;
 pub use table::{Field, Row, Table};
 pub use text::decode;
