@@ -271,8 +271,10 @@ impl Study {
     }
 
     fn dipole(&self, fit: &Fit) -> DipoleReport {
-        /// Half the width of the midline.
+        /// Half the width of the midline, and the distance from the centre below which no site is above.
         const MIDLINE_MM: f64 = 5.0;
+        /// Distance from the centre below which the radius has no direction worth its name.
+        const CENTRE_MM: f64 = 1.0;
         let sphere = self.placement.sphere.sphere;
         let canonical_mm = fit.position * sphere.radius;
         let distance = canonical_mm.norm();
@@ -281,7 +283,7 @@ impl Study {
         DipoleReport {
             position_mm: sphere.centre + canonical_mm,
             canonical_mm,
-            nearest_site: nearest_site(canonical_mm),
+            nearest_site: nearest_site(canonical_mm).filter(|_| distance > MIDLINE_MM),
             side: match canonical_mm[0] {
                 x if x > MIDLINE_MM => "right",
                 x if x < -MIDLINE_MM => "left",
@@ -292,7 +294,7 @@ impl Study {
             strength_unit: if unit == MapUnit::Relative { "relative" } else { "nAm" },
             eccentricity: fit.position.norm() / self.shells.brain_ratio(),
             depth_mm: self.shells.inner_skull_ratio() * sphere.radius - distance,
-            radial_share: canonical_mm.unit().map(|radial| {
+            radial_share: canonical_mm.unit().filter(|_| distance > CENTRE_MM).map(|radial| {
                 let along: f64 = direction.dot(radial);
                 along * along
             }),

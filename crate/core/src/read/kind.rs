@@ -48,6 +48,7 @@ pub fn kind(bytes: &[u8]) -> Kind {
 }
 
 #[cfg(test)]
+#[allow(clippy::indexing_slicing)]
 mod tests {
     use super::*;
     use crate::electrode::standard_sites;

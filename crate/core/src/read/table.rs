@@ -40,8 +40,8 @@ enum Delimiter {
 impl<'a> Table<'a> {
     /// Splits text into rows and fields. The delimiter is the first of tab, semicolon and comma that stands in every
     /// line of the first twenty outside quotes; otherwise runs of blanks. Empty lines and lines that begin with `#` or
-    /// `%` are passed over. The first row is a header when it holds no number and either
-    /// a usual name of the label column, or numbers follow.
+    /// `%` are passed over. The first row is a header when it holds a usual name of
+    /// the label column, or when it holds no number and numbers follow.
     ///
     /// # Errors
     /// `table-ragged` at the first line with another number of fields than the first one.
@@ -109,7 +109,7 @@ pub(super) fn is_missing(field: &str) -> bool {
 fn is_header(first: &Row<'_>, rest: &[Row<'_>]) -> bool {
     let numbers = |row: &Row<'_>| row.fields.iter().filter(|field| number(field).is_some()).count();
     let named = first.fields.iter().any(|field| KNOWN_NAMES.iter().any(|name| field.eq_ignore_ascii_case(name)));
-    numbers(first) == 0 && (named || rest.iter().any(|row| numbers(row) > 0))
+    named || (numbers(first) == 0 && rest.iter().any(|row| numbers(row) > 0))
 }
 
 /// Names that columns of labels and positions usually bear.
@@ -181,6 +181,15 @@ mod tests {
                 "{text:?}"
             );
         }
+    }
+
+    #[test]
+    fn a_header_may_name_maps_by_numbers_but_never_has_to_be_there() {
+        let header = |text: &str| Table::read(text, "maps").ok().map(|table| table.header.is_some());
+        assert_eq!(header("Label,0,1\nCz,3,4"), Some(true));
+        assert_eq!(header(",a,b\nCz,3,4"), Some(true));
+        assert_eq!(header("Fz,1,2\nCz,3,4"), Some(false));
+        assert_eq!(header("Fz\nCz"), Some(false));
     }
 
     #[test]

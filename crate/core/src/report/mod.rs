@@ -139,7 +139,7 @@ pub struct DipoleReport {
     pub position_mm: Vec3,
     /// Position with x right, y front, z up and the origin at the sphere's centre.
     pub canonical_mm: Vec3,
-    /// Standard site radially above, where one is within 20°.
+    /// Standard site radially above, where one is within 20°; absent within 5 mm of the centre.
     pub nearest_site: Option<&'static str>,
     /// Which half of the head, `midline` within 5 mm of its mid-plane.
     pub side: &'static str,
@@ -153,7 +153,7 @@ pub struct DipoleReport {
     pub eccentricity: f64,
     /// Inner-skull radius less the distance from the centre.
     pub depth_mm: f64,
-    /// (m·r̂)² / |m|²; absent at the centre.
+    /// (m·r̂)² / |m|²; absent within 1 mm of the centre.
     pub radial_share: Option<f64>,
     /// Whether the position lies on the boundary of the region of sources.
     pub at_boundary: bool,

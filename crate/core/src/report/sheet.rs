@@ -86,7 +86,11 @@ fn sentence(map: &FittedMap) -> String {
         percent(map.residual_variance),
         map.degrees_of_freedom
     );
-    let site = dipole.nearest_site.map_or("away from all standard sites".into(), |site| format!("under {site}"));
+    let site = match dipole.nearest_site {
+        Some(site) => format!("under {site}"),
+        None if dipole.eccentricity < 0.1 => "near the centre of the sphere".into(),
+        None => "away from all standard sites".into(),
+    };
     let place = format!(
         "Equivalent position {site}, {}, model depth {} mm; published error of sphere models about 10 mm.",
         dipole.side,
@@ -146,9 +150,9 @@ fn rows(map: &FittedMap, head: &HeadReport, electrodes: usize) -> Vec<Row> {
         row(
             "nearest_site",
             "Nearest site above",
-            dipole.nearest_site.unwrap_or("none within 20°").to_owned(),
+            dipole.nearest_site.unwrap_or("none").to_owned(),
             "",
-            "Standard electrode site radially above the position; it names no anatomy.",
+            "Standard electrode site radially above the position, if one is within 20°; it names no anatomy.",
         ),
         row("side", "Side", dipole.side.to_owned(), "", "Half of the head; midline within 5 mm of its mid-plane."),
         row(

@@ -9,7 +9,7 @@ pub struct Picture {
     pub size: usize,
     /// Shared scale: −limit … limit.
     pub limit: f64,
-    /// Factor for the left-over map so that its pattern shows: 1, 2, 5, 10, …; not applied to its raster.
+    /// Factor for the left-over map so that its pattern shows: 1, 2, 5, 10, … 5000; not applied to its raster.
     pub stretch: f64,
     /// Levels of the contour lines of the first two maps; those of the left-over map are divided by the stretch.
     pub levels: Vec<f64>,
@@ -144,13 +144,15 @@ impl Picture {
     }
 }
 
-/// The largest of 1, 2, 5, 10, … that keeps the left-over map within the scale, if it would not fill a quarter of it.
+/// The largest of 1, 2, 5, …, 5000 that keeps the left-over map within the scale, if it would not fill a quarter of it. What
+/// is mere rounding is not blown up.
 fn stretch(limit: f64, left_over: f64) -> f64 {
-    if left_over <= 0.0 || left_over * 4.0 >= limit {
+    const ROUNDING: f64 = 1e-6;
+    if left_over <= ROUNDING * limit || left_over * 4.0 >= limit {
         return 1.0;
     }
     let room = limit / left_over;
-    let decade = libm::pow(10.0, libm::floor(libm::log10(room)).min(9.0));
+    let decade = libm::pow(10.0, libm::floor(libm::log10(room)).min(3.0));
     [5.0, 2.0, 1.0].into_iter().map(|step| step * decade).find(|factor| *factor <= room).unwrap_or(1.0)
 }
 
@@ -160,4 +162,18 @@ fn extremes(values: &[f64], used: &[usize]) -> Extremes {
     };
     let electrode = |index: usize| used.get(index).copied().unwrap_or(0);
     Extremes { max: electrode(best(1.0)), min: electrode(best(-1.0)) }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::stretch;
+
+    #[test]
+    fn the_left_over_map_is_stretched_into_the_scale() {
+        for (left_over, factor) in
+            [(3.0, 1.0), (1.0, 10.0), (0.9, 10.0), (0.4, 20.0), (1e-3, 5000.0), (1e-6, 1.0), (0.0, 1.0)]
+        {
+            assert_eq!(stretch(10.0, left_over), factor, "{left_over}");
+        }
+    }
 }
