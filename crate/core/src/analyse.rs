@@ -262,7 +262,7 @@ impl Study {
             variance_explained: 1.0 - fit.residual_variance,
             adjusted_rv: adjusted_residual_variance(fit.residual_variance, map.len()),
             degrees_of_freedom: degrees_of_freedom(map.len()),
-            dipole: self.dipole(fit),
+            dipole: self.equivalent_dipole(fit),
             fit: SearchReport { stopped_because: fit.stopped, evaluations: fit.evaluations },
             measured,
             projected,
@@ -270,15 +270,15 @@ impl Study {
         }
     }
 
-    fn dipole(&self, fit: &Fit) -> DipoleReport {
+    fn equivalent_dipole(&self, found: &Fit) -> DipoleReport {
         /// Half the width of the midline, and the distance from the centre below which no site is above.
         const MIDLINE_MM: f64 = 5.0;
         /// Distance from the centre below which the radius has no direction worth its name.
         const CENTRE_MM: f64 = 1.0;
         let sphere = self.placement.sphere.sphere;
-        let canonical_mm = fit.position * sphere.radius;
+        let canonical_mm = found.position * sphere.radius;
         let distance = canonical_mm.norm();
-        let direction = fit.moment.unit().unwrap_or_default();
+        let direction = found.moment.unit().unwrap_or_default();
         let unit = self.settings.map_unit;
         DipoleReport {
             position_mm: sphere.centre + canonical_mm,
@@ -290,15 +290,15 @@ impl Study {
                 _ => "midline",
             },
             direction,
-            strength: fit.moment.norm() * unit.microvolts(),
+            strength: found.moment.norm() * unit.microvolts(),
             strength_unit: if unit == MapUnit::Relative { "relative" } else { "nAm" },
-            eccentricity: fit.position.norm() / self.shells.brain_ratio(),
+            eccentricity: found.position.norm() / self.shells.brain_ratio(),
             depth_mm: self.shells.inner_skull_ratio() * sphere.radius - distance,
             radial_share: canonical_mm.unit().filter(|_| distance > CENTRE_MM).map(|radial| {
                 let along: f64 = direction.dot(radial);
                 along * along
             }),
-            at_boundary: fit.stopped == Stopped::Boundary,
+            at_boundary: found.stopped == Stopped::Boundary,
         }
     }
 
