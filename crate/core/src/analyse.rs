@@ -11,7 +11,7 @@ use crate::math::mean;
 use crate::placement::{Placement, Wishes, place};
 use crate::read::{read_electrodes, read_maps};
 use crate::report::{
-    Assessment, DipoleReport, ElectrodeReport, FittedMap, HeadReport, Input, MapReport, Note, Program, Report,
+    Assessment, ElectrodeReport, EquivalentDipole, FittedMap, HeadReport, Input, MapReport, Note, Program, Report,
     SearchReport, Settings, Sheet, Site,
 };
 use crate::scene::{Picture, Spline};
@@ -270,7 +270,7 @@ impl Study {
         }
     }
 
-    fn equivalent_dipole(&self, found: &Fit) -> DipoleReport {
+    fn equivalent_dipole(&self, found: &Fit) -> EquivalentDipole {
         /// Half the width of the midline, and the distance from the centre below which no site is above.
         const MIDLINE_MM: f64 = 5.0;
         /// Distance from the centre below which the radius has no direction worth its name.
@@ -280,7 +280,7 @@ impl Study {
         let distance = canonical_mm.norm();
         let direction = found.moment.unit().unwrap_or_default();
         let unit = self.settings.map_unit;
-        DipoleReport {
+        EquivalentDipole {
             position_mm: sphere.centre + canonical_mm,
             canonical_mm,
             nearest_site: nearest_site(canonical_mm).filter(|_| distance > MIDLINE_MM),

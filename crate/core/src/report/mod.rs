@@ -114,7 +114,7 @@ pub struct FittedMap {
     /// Electrodes used less 7.
     pub degrees_of_freedom: usize,
     /// The dipole.
-    pub dipole: DipoleReport,
+    pub dipole: EquivalentDipole,
     /// How the search went.
     pub fit: SearchReport,
     /// The map, average-referenced, in its own unit and the order of the used electrodes.
@@ -134,7 +134,7 @@ impl FittedMap {
 
 /// An equivalent dipole.
 #[derive(Clone, Debug, PartialEq, Serialize)]
-pub struct DipoleReport {
+pub struct EquivalentDipole {
     /// Position in the frame of the electrode table.
     pub position_mm: Vec3,
     /// Position with x right, y front, z up and the origin at the sphere's centre.
