@@ -46,7 +46,7 @@ pub fn test(workspace: &Workspace, install: bool) -> Result<()> {
     if dist.is_some() {
         steps.step("tests, engine in Node, page in browsers", || {
             let mut test = workspace.cargo();
-            test.args(["test", "--workspace", "--exclude=inward-xtask", "--locked"]);
+            test.args(["test", "--workspace", "--exclude=inward-xtask", "--locked", "--no-fail-fast"]);
             run(test.envs(tools.environment()).env("INWARD_DIST", &workspace.dist))
         });
     }
