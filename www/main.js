@@ -21,7 +21,17 @@ addEventListener("error", (event) => session.fail(event.error ?? event.message))
 addEventListener("unhandledrejection", (event) => session.fail(event.reason));
 
 writeWords(document);
-for (const show of [showStatus, showIntake, showFailure, showAnswer, showChoice, showMaps, showNumbers, showNotes, showColophon]) {
+for (const show of [
+  showStatus,
+  showIntake,
+  showFailure,
+  showAnswer,
+  showChoice,
+  showMaps,
+  showNumbers,
+  showNotes,
+  showColophon,
+]) {
   show(session);
 }
 takeDropsAndPastes(session, need("drop", HTMLElement));

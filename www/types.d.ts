@@ -202,9 +202,7 @@ type WorkerTask =
 type WorkerMessage = WorkerTask & { id: number };
 
 type WorkerReply =
-  | { id: number; value: unknown }
-  | { id: number; progress: FitProgress }
-  | { id: number; fault: Fault };
+  { id: number; value: unknown } | { id: number; progress: FitProgress } | { id: number; fault: Fault };
 
 /** One input as the session holds it. */
 interface Input {

@@ -3,10 +3,12 @@
 import { openCanvas } from "./canvas.js";
 import { colourOfShare, cssColour } from "./scale.js";
 
+/** @import { Surroundings } from "./canvas.js" */
+
 /**
  * @param {HTMLCanvasElement} canvas
  * @param {Picture} picture
- * @param {import("./canvas.js").Surroundings} around
+ * @param {Surroundings} around
  */
 export function paintBar(canvas, picture, around) {
   const opened = openCanvas(canvas, around.ratio);

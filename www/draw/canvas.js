@@ -1,7 +1,9 @@
 /** A canvas at the device's resolution, and the inks of its surroundings. */
 
+/** @import { Theme } from "./scale.js" */
+
 /**
- * @typedef {{ ink: string, paper: string, theme: import("./scale.js").Theme, font: string, ratio: number }} Surroundings
+ * @typedef {{ ink: string, paper: string, theme: Theme, font: string, ratio: number }} Surroundings
  */
 
 const PRINT_RATIO = 3;
@@ -21,7 +23,8 @@ function luminanceOf(colour) {
 export function surroundingsOf(canvas, printing) {
   const style = getComputedStyle(canvas);
   const font = style.fontFamily;
-  if (printing) return { ink: "rgb(20, 20, 20)", paper: "rgb(255, 255, 255)", theme: "light", font, ratio: PRINT_RATIO };
+  if (printing)
+    return { ink: "rgb(20, 20, 20)", paper: "rgb(255, 255, 255)", theme: "light", font, ratio: PRINT_RATIO };
   const dark = luminanceOf(style.color) > 0.5;
   return {
     ink: style.color,

@@ -6,6 +6,9 @@
 import { openCanvas } from "./canvas.js";
 import { colourOfShare, colourTable, cssColour } from "./scale.js";
 
+/** @import { Surroundings } from "./canvas.js" */
+/** @import { Theme } from "./scale.js" */
+
 const TABLE_STEPS = 511;
 /** CSS pixels around the disc for the letters. */
 const MARGIN = 20;
@@ -25,7 +28,7 @@ const LABEL_DISTANCE = 12;
  * @param {Float32Array} raster
  * @param {number} size
  * @param {number} limit
- * @param {import("./scale.js").Theme} theme
+ * @param {Theme} theme
  */
 function imageOfRaster(raster, size, limit, theme) {
   const image = document.createElement("canvas");
@@ -59,7 +62,7 @@ function tracePoints(pen, points, closed) {
 /**
  * @param {HTMLCanvasElement} canvas
  * @param {DiscContent} content
- * @param {import("./canvas.js").Surroundings} around
+ * @param {Surroundings} around
  */
 export function paintDisc(canvas, content, around) {
   const opened = openCanvas(canvas, around.ratio);
@@ -114,7 +117,7 @@ export function paintDisc(canvas, content, around) {
  * @param {CanvasRenderingContext2D} pen
  * @param {Picture} picture
  * @param {number} pixel
- * @param {import("./canvas.js").Surroundings} around
+ * @param {Surroundings} around
  */
 function paintElectrodes(pen, picture, pixel, around) {
   pen.fillStyle = around.ink;
@@ -133,12 +136,15 @@ function paintElectrodes(pen, picture, pixel, around) {
  * @param {CanvasRenderingContext2D} pen
  * @param {Picture["dipole"]} dipole
  * @param {number} pixel
- * @param {import("./canvas.js").Surroundings} around
+ * @param {Surroundings} around
  */
 function paintDipole(pen, dipole, pixel, around) {
   const half = 20 * pixel;
   pen.lineCap = "round";
-  for (const [colour, halo] of /** @type {const} */ ([[around.paper, 1.5], [around.ink, 0]])) {
+  for (const [colour, halo] of /** @type {const} */ ([
+    [around.paper, 1.5],
+    [around.ink, 0],
+  ])) {
     pen.strokeStyle = colour;
     pen.fillStyle = colour;
     pen.lineWidth = (2 + 2 * halo) * pixel;
@@ -158,7 +164,7 @@ function paintDipole(pen, dipole, pixel, around) {
  * @param {string} text
  * @param {number} x
  * @param {number} y
- * @param {import("./canvas.js").Surroundings} around
+ * @param {Surroundings} around
  */
 function writeHaloed(pen, text, x, y, around) {
   pen.lineWidth = 3;
@@ -177,14 +183,17 @@ function writeHaloed(pen, text, x, y, around) {
  * @param {number} unit
  * @param {number} edge
  * @param {DiscContent} content
- * @param {import("./canvas.js").Surroundings} around
+ * @param {Surroundings} around
  */
 function paintLetters(pen, middle, centre, unit, edge, content, around) {
   const { words, picture, role } = content;
   pen.font = `11px ${around.font}`;
   pen.textAlign = "center";
   pen.textBaseline = "middle";
-  for (const [key, sign] of /** @type {const} */ ([["max", "+"], ["min", "\u2212"]])) {
+  for (const [key, sign] of /** @type {const} */ ([
+    ["max", "+"],
+    ["min", "\u2212"],
+  ])) {
     const electrode = picture.electrodes[picture.extremes[role][key]];
     if (electrode === undefined) continue;
     // The label keeps out of the way of the dipole and inside the disc, and leaves the middle free.

@@ -54,7 +54,12 @@ export function oklchOfShare(share, theme, shift = 0) {
   };
 }
 
-/** @param {number} share @param {Theme} theme @param {number} [shift] @returns {[number, number, number]} sRGB, 0 to 255 */
+/**
+ * @param {number} share
+ * @param {Theme} theme
+ * @param {number} [shift]
+ * @returns {[number, number, number]} sRGB, 0 to 255
+ */
 export function colourOfShare(share, theme, shift) {
   const { lightness, chroma, hue } = oklchOfShare(share, theme, shift);
   const [red, green, blue] = linearOfOklch(lightness, chroma, hue);

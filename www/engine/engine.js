@@ -20,7 +20,10 @@ function engineError(code, message, hint, details) {
   return Object.assign(new Error(message), { code, where: null, hint, details });
 }
 
-/** The caller may change its bytes afterwards; a study that reopens must not see that. @param {InwardContent} content */
+/**
+ * The caller may change its bytes afterwards; a study that reopens must not see that.
+ * @param {InwardContent} content
+ */
 function keepContent(content) {
   return content instanceof Uint8Array ? content.slice() : content;
 }
@@ -74,7 +77,8 @@ export function makeEngine(instantiate) {
 
   /** @param {EngineRequest} request @returns {Study} */
   function open(request) {
-    const kept = keepRequest(request);
+    /** What the study opens itself again from. */
+    let kept = request;
     /** @type {Glue | null} */
     let owner = null;
     /** @type {GlueStudy | null} */
@@ -105,6 +109,7 @@ export function makeEngine(instantiate) {
       notes: opened.notes(),
       count: opened.count,
     }));
+    kept = keepRequest(request);
 
     return {
       ...facts,

@@ -5,7 +5,9 @@
 
 /** @param {unknown} error @returns {Fault} */
 export function faultOf(error) {
-  const thrown = /** @type {any} */ (error instanceof Error || error instanceof DOMException ? error : new Error(String(error)));
+  const thrown = /** @type {any} */ (
+    error instanceof Error || error instanceof DOMException ? error : new Error(String(error))
+  );
   if (typeof thrown.code === "string") {
     return {
       code: thrown.code,
@@ -16,5 +18,11 @@ export function faultOf(error) {
     };
   }
   const details = `${thrown.name}: ${thrown.message}\n${thrown.stack ?? ""}`;
-  return { code: thrown.name === "AbortError" ? "given-up" : "page-error", message: "", where: null, hint: "", details };
+  return {
+    code: thrown.name === "AbortError" ? "given-up" : "page-error",
+    message: "",
+    where: null,
+    hint: "",
+    details,
+  };
 }

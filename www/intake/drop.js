@@ -2,6 +2,8 @@
 
 import { inputOfFile, sortInputs } from "./files.js";
 
+/** @import { Session } from "../session/session.js" */
+
 /** @param {DataTransfer | null} transfer @returns {Promise<Input[]>} */
 async function inputsOfTransfer(transfer) {
   if (transfer === null) return [];
@@ -10,7 +12,7 @@ async function inputsOfTransfer(transfer) {
   return text.trim() === "" ? [] : [{ name: "", content: text }];
 }
 
-/** @param {import("../session/session.js").Session} session @param {DataTransfer | null} transfer */
+/** @param {Session} session @param {DataTransfer | null} transfer */
 async function takeTransfer(session, transfer) {
   try {
     const inputs = await inputsOfTransfer(transfer);
@@ -21,17 +23,20 @@ async function takeTransfer(session, transfer) {
 }
 
 /** @param {EventTarget | null} target */
-function isField(target) {
-  return target instanceof HTMLElement && target.matches("textarea, input, select");
+function isTextField(target) {
+  return target instanceof HTMLElement && target.matches("textarea, input[type=number]");
 }
 
 /**
- * @param {import("../session/session.js").Session} session
+ * @param {Session} session
  * @param {HTMLElement} overlay shown while something is held over the page
  */
 export function takeDropsAndPastes(session, overlay) {
+  /** Text moved about in a field is the field's business. @param {DragEvent} event */
+  const isOwnText = (event) => isTextField(event.target) && !event.dataTransfer?.types.includes("Files");
   /** @param {DragEvent} event */
   const hover = (event) => {
+    if (isOwnText(event)) return;
     event.preventDefault();
     overlay.hidden = false;
   };
@@ -41,12 +46,13 @@ export function takeDropsAndPastes(session, overlay) {
     if (event.relatedTarget === null) overlay.hidden = true;
   });
   document.addEventListener("drop", (event) => {
+    if (isOwnText(event)) return;
     event.preventDefault();
     overlay.hidden = true;
     takeTransfer(session, event.dataTransfer);
   });
   document.addEventListener("paste", (event) => {
-    if (isField(event.target)) return;
+    if (isTextField(event.target)) return;
     event.preventDefault();
     takeTransfer(session, event.clipboardData);
   });

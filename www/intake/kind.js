@@ -11,7 +11,10 @@ const WORD = /^(?!.*\ufffd)[\p{L}\p{N}\p{P}\p{S} ]{1,24}$/u;
 /** @param {string} line */
 function cellsOf(line) {
   const mark = ["\t", ";", ","].find((one) => line.includes(one)) ?? /\s+/;
-  return line.trim().split(mark).map((cell) => cell.trim().replace(/^"(.*)"$/, "$1"));
+  return line
+    .trim()
+    .split(mark)
+    .map((cell) => cell.trim().replace(/^"(.*)"$/, "$1"));
 }
 
 /** @param {string | undefined} cell */
@@ -72,7 +75,9 @@ export function kindOf(text) {
   if (rows.length === 0) return "maps";
   const hasHeader = rows[0].slice(1).some((cell) => cell !== "" && !isNumber(cell));
   if (hasHeader) {
-    const named = ["x", "y", "z"].every((axis) => rows[0].some((cell) => new RegExp(`^${axis}([^a-z]|$)`, "i").test(cell)));
+    const named = ["x", "y", "z"].every((axis) =>
+      rows[0].some((cell) => new RegExp(`^${axis}([^a-z]|$)`, "i").test(cell)),
+    );
     return named ? "electrodes" : "maps";
   }
   if (rows.every((cells) => cells.length === 1)) {

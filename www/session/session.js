@@ -7,7 +7,7 @@ import { makeStore } from "./store.js";
 import { faultOf } from "../engine/fault.js";
 import { pageFault } from "../text/faults.js";
 
-/** @typedef {ReturnType<typeof import("../engine/pool/client.js").makeClient>} EngineClient */
+/** @import { EngineClient } from "../engine/pool/client.js" */
 
 /** @typedef {ReturnType<typeof makeSession>} Session */
 
@@ -38,7 +38,9 @@ export function makeSession() {
   /** @param {unknown} error an error, or a fault as it came from the worker */
   function fail(error) {
     const fault = /** @type {Fault} */ (
-      error !== null && typeof error === "object" && !(error instanceof Error) && "code" in error ? error : faultOf(error)
+      error !== null && typeof error === "object" && !(error instanceof Error) && "code" in error
+        ? error
+        : faultOf(error)
     );
     if (fault.code !== "given-up") store.write({ phase: "failed", failure: pageFault(fault) });
   }
@@ -125,16 +127,19 @@ export function makeSession() {
       if (store.read().inputs.maps !== null) ask();
     },
 
-    /** One or both inputs at once; null takes an input away. @param {Partial<Record<InputKind, Input | null>>} inputs */
+    /**
+     * One or both inputs at once; null takes an input away.
+     * @param {Partial<Record<InputKind, Input | null>>} inputs
+     */
     put(inputs) {
       store.write({ inputs: { ...store.read().inputs, ...inputs } });
-      if ("maps" in inputs || store.read().inputs.maps !== null) ask();
+      ask();
     },
 
     /** @param {EngineSettings} settings */
     set(settings) {
       store.write({ settings: { ...store.read().settings, ...settings } });
-      if (store.read().inputs.maps !== null) ask();
+      ask();
     },
 
     /** Shows another map of the table. @param {number} index */
@@ -161,10 +166,14 @@ export function makeSession() {
       const { answer } = store.read();
       if (client === null || answer === null) return null;
       try {
-        return await client.ask({ kind: "report", key: answer.key });
+        return await client.ask({ kind: "report", key: answer.key }, ({ done, total }) => {
+          store.write({ progress: { done, total } });
+        });
       } catch (fault) {
         fail(fault);
         return null;
+      } finally {
+        store.write({ progress: null });
       }
     },
 

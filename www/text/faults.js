@@ -31,7 +31,14 @@ export function pageFault(fault) {
   return { ...fault, ...words };
 }
 
-const PLACE_WORDS = /** @type {const} */ ({ file: "", line: "line", column: "column", byte: "byte", label: "electrode", map: "map" });
+const PLACE_WORDS = /** @type {const} */ ({
+  file: "",
+  line: "line",
+  column: "column",
+  byte: "byte",
+  label: "electrode",
+  map: "map",
+});
 
 /** A place in words: "map table, line 3, column 2". @param {Place | null} place */
 function placeText(place) {

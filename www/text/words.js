@@ -2,27 +2,28 @@
 
 /** @type {Record<string, string>} */
 const WORDS = {
-  "title": "Inward",
-  "tagline": "One equivalent dipole for one EEG scalp map",
-  "private": "Nothing leaves this machine",
-  "skip": "Skip to the answer",
+  title: "Inward",
+  tagline: "One equivalent dipole for one EEG scalp map",
+  private: "Nothing leaves this machine",
+  skip: "Skip to the answer",
 
   "empty.what": "Does one equivalent dipole explain this scalp map, where would it lie, and what is left over?",
-  "empty.how": "Give a map as a table: paste it, drop it anywhere on this page, or pick a file. The answer comes by itself.",
+  "empty.how":
+    "Give a map as a table: paste it, drop it anywhere on this page, or pick a file. The answer comes by itself.",
   "empty.private": "Everything is computed in this tab. Nothing is sent, stored or looked up.",
   "empty.maps": "A map: label and value, one electrode a line; further columns are further maps",
   "empty.electrodes": "Electrode positions, if measured: label, x, y, z",
 
-  "intake": "Input",
+  intake: "Input",
   "intake.change": "Change input",
   "intake.fold": "Fold away",
-  "maps": "Map",
+  maps: "Map",
   "maps.hint": "Label and value, one electrode a line. More columns are more maps.",
-  "electrodes": "Electrodes",
+  electrodes: "Electrodes",
   "electrodes.hint": "Label, x, y, z, or labels alone. Without a table: standard positions by the map’s labels.",
-  "pick": "Pick a file",
-  "clear": "Clear",
-  "unit": "Unit of the map",
+  pick: "Pick a file",
+  clear: "Clear",
+  unit: "Unit of the map",
   "unit.relative": "relative",
   "unit.uV": "µV",
   "unit.V": "V",
@@ -35,7 +36,7 @@ const WORDS = {
   "slot.electrodes-misplaced": "This reads like a map.",
   "slot.maps-move": "Use as electrodes",
   "slot.electrodes-move": "Use as map",
-  "drop": "Drop a map, an electrode table, or both",
+  drop: "Drop a map, an electrode table, or both",
 
   "state.loading": "Starting the engine",
   "state.ready": "Ready for a map",
@@ -44,15 +45,15 @@ const WORDS = {
   "state.answered": "Answered",
   "state.failed": "That did not work",
   "state.stopped": "Stopped",
-  "cancel": "Stop",
+  cancel: "Stop",
 
-  "choice": "Map of the table",
+  choice: "Map of the table",
   "choice.previous": "Previous map",
   "choice.next": "Next map",
   "choice.number": "Number in the table",
   "choice.unfitted": "not fitted",
 
-  "answer": "Answer",
+  answer: "Answer",
   "maps.title": "Measured, one dipole, left over",
   "map.measured": "measured",
   "map.projected": "one dipole",
@@ -66,30 +67,31 @@ const WORDS = {
   "scale.shared": "One scale for all three",
   "scale.lines": "Lines: solid positive, dashed negative",
 
-  "numbers": "Numbers",
+  numbers: "Numbers",
   "numbers.quantity": "Quantity",
   "numbers.value": "Value",
   "numbers.unit": "Unit",
   "numbers.meaning": "Meaning",
-  "copy": "Copy table",
-  "copied": "Copied",
+  copy: "Copy table",
+  copied: "Copied",
   "copy.failed": "The browser does not allow copying here",
-  "json": "Download report (JSON)",
+  json: "Download report (JSON)",
 
-  "notes": "What was assumed",
+  notes: "What was assumed",
   "notes.none": "Nothing beyond the standard head.",
   "note.warning": "Note well",
 
-  "caution.title": "Caution",
-  "caution":
-    "For research only. Inward is not a medical device and gives no medical advice; where a person’s care is concerned, licensed practice and local rules decide. A low residual variance alone does not show that a map has a single source.",
+  caution: [
+    "For research only. Inward is not a medical device and gives no medical advice;",
+    "where a person’s care is concerned, licensed practice and local rules decide.",
+    "A low residual variance alone does not show that a map has a single source.",
+  ].join(" "),
 
-  "failure.next": "Next step",
   "failure.details": "Details to copy",
   "failure.copy": "Copy details",
   "failure.dismiss": "Close",
 
-  "notices": "Licences of what is built in",
+  notices: "Licences of what is built in",
 };
 
 /** @param {string} code */
@@ -117,13 +119,15 @@ export function keptText(subject) {
 /** Which map of which inputs. @param {Answer} answer */
 export function subjectText({ names, maps, chosen }) {
   const map = names.maps || word("slot.pasted");
-  const electrodes = names.electrodes === null ? word("slot.standard") : names.electrodes || word("slot.pasted-electrodes");
+  const electrodes =
+    names.electrodes === null ? word("slot.standard") : names.electrodes || word("slot.pasted-electrodes");
   return [maps[chosen]?.name, map, electrodes].filter((part) => part).join(" · ");
 }
 
 /** @param {string} stretch the left-over map's own factor, or empty */
 export function scaleText(stretch) {
-  const shared = stretch === "" ? word("scale.shared") : `${word("scale.shared")}; ${word("map.residual")} drawn ${stretch}`;
+  const shared =
+    stretch === "" ? word("scale.shared") : `${word("scale.shared")}; ${word("map.residual")} drawn ${stretch}`;
   return `${shared}. ${word("scale.lines")}.`;
 }
 

@@ -4,13 +4,15 @@ import { typeset } from "../text/figures.js";
 import { subjectText } from "../text/words.js";
 import { make, need } from "./element.js";
 
+/** @import { Session } from "../session/session.js" */
+
 /** The first sentence is the answer; what follows explains it and is set smaller. @param {string} text */
 function splitSentence(text) {
   const end = text.search(/\.\s+\p{Lu}/u);
   return end < 0 ? [text] : [text.slice(0, end + 1), text.slice(end + 1)];
 }
 
-/** @param {import("../session/session.js").Session} session */
+/** @param {Session} session */
 export function showAnswer(session) {
   const sentence = need("sentence", HTMLElement);
   const hint = need("sentence-hint", HTMLElement);
@@ -30,7 +32,9 @@ export function showAnswer(session) {
       need("subject", HTMLElement).textContent = subjectText(answer);
       const map = answer.maps[answer.chosen];
       const text = sheet?.sentence ?? (map !== undefined && "error" in map ? `${map.name}: ${map.error.message}` : "");
-      sentence.replaceChildren(...splitSentence(text).map((part, at) => make("span", typeset(part), { class: at === 0 ? "first" : "rest" })));
+      sentence.replaceChildren(
+        ...splitSentence(text).map((part, at) => make("span", typeset(part), { class: at === 0 ? "first" : "rest" })),
+      );
       hint.textContent = !sheet && map !== undefined && "error" in map ? map.error.hint : "";
       hint.hidden = hint.textContent === "";
     },

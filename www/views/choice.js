@@ -7,6 +7,8 @@ import { percentText } from "../text/figures.js";
 import { furtherText, word } from "../text/words.js";
 import { make, need } from "./element.js";
 
+/** @import { Session } from "../session/session.js" */
+
 const BLOCK = 500;
 
 /** @param {MapSummary} map */
@@ -19,7 +21,7 @@ function optionElement(index, text) {
   return make("option", text, { value: String(index) });
 }
 
-/** @param {import("../session/session.js").Session} session */
+/** @param {Session} session */
 export function showChoice(session) {
   const list = need("map-choice", HTMLSelectElement);
   const previous = need("map-previous", HTMLButtonElement);

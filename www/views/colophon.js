@@ -3,7 +3,9 @@
 import { programText } from "../text/faults.js";
 import { need } from "./element.js";
 
-/** @param {import("../session/session.js").Session} session */
+/** @import { Session } from "../session/session.js" */
+
+/** @param {Session} session */
 export function showColophon(session) {
   session.watch(
     (state) => state.program,

@@ -6,7 +6,9 @@ import { keptText, subjectText } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { need } from "./element.js";
 
-/** @param {import("../session/session.js").Session} session */
+/** @import { Session } from "../session/session.js" */
+
+/** @param {Session} session */
 export function showFailure(session) {
   const panel = need("failure", HTMLElement);
   const details = need("failure-details", HTMLElement);
@@ -26,7 +28,8 @@ export function showFailure(session) {
       const kept = need("failure-kept", HTMLElement);
       kept.hidden = state.answer === null;
       kept.textContent = state.answer === null ? "" : keptText(subjectText(state.answer));
-      if (failure !== null && !(document.activeElement instanceof HTMLTextAreaElement)) panel.scrollIntoView({ block: "nearest" });
+      if (failure !== null && !(document.activeElement instanceof HTMLTextAreaElement))
+        panel.scrollIntoView({ block: "nearest" });
       details.textContent = failure === null ? "" : detailsText(failure, state.program);
     },
   );

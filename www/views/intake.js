@@ -4,6 +4,8 @@ import { contentKind, inputOfFile, shownText } from "../intake/files.js";
 import { word } from "../text/words.js";
 import { need } from "./element.js";
 
+/** @import { Session } from "../session/session.js" */
+
 /** Typing is over after this long. */
 const TYPING_PAUSE_MS = 350;
 
@@ -16,7 +18,7 @@ function inputName(input, kind) {
   return input.name || word("slot.pasted");
 }
 
-/** @param {import("../session/session.js").Session} session @param {InputKind} kind */
+/** @param {Session} session @param {InputKind} kind */
 function showSlot(session, kind) {
   const field = need(`${kind}-text`, HTMLTextAreaElement);
   const file = need(`${kind}-file`, HTMLInputElement);
@@ -75,7 +77,7 @@ function showSlot(session, kind) {
   );
 }
 
-/** @param {import("../session/session.js").Session} session */
+/** @param {Session} session */
 function showUnit(session) {
   const unit = need("unit", HTMLFieldSetElement);
   unit.addEventListener("change", (event) => {
@@ -86,7 +88,7 @@ function showUnit(session) {
 /**
  * Folds the column when an answer has come, but never under the hands of someone who types; opens it when the input
  * has to be mended.
- * @param {import("../session/session.js").Session} session
+ * @param {Session} session
  */
 function showFolding(session) {
   const intake = need("intake", HTMLElement);
@@ -129,7 +131,7 @@ function showFolding(session) {
   );
 }
 
-/** @param {import("../session/session.js").Session} session */
+/** @param {Session} session */
 export function showIntake(session) {
   showSlot(session, "maps");
   showSlot(session, "electrodes");

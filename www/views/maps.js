@@ -7,14 +7,31 @@ import { stretchText } from "../text/figures.js";
 import { scaleText, word } from "../text/words.js";
 import { need } from "./element.js";
 
+/** @import { Session } from "../session/session.js" */
+
 /** @type {MapRole[]} */
 const ROLES = ["measured", "projected", "residual"];
 
-/** @param {import("../session/session.js").Session} session */
+/** The query names one resolution, so it is asked anew after every change. @param {() => void} paint */
+function watchRatio(paint) {
+  const query = matchMedia(`(resolution: ${devicePixelRatio}dppx)`);
+  const changed = () => {
+    paint();
+    watchRatio(paint);
+  };
+  query.addEventListener("change", changed, { once: true });
+}
+
+/** @param {Session} session */
 export function showMaps(session) {
   const discs = ROLES.map((role) => ({ role, canvas: need(`map-${role}`, HTMLCanvasElement) }));
   const bar = need("scale-bar", HTMLCanvasElement);
-  const words = { front: word("map.front"), left: word("map.left"), right: word("map.right"), above: word("map.above") };
+  const words = {
+    front: word("map.front"),
+    left: word("map.left"),
+    right: word("map.right"),
+    above: word("map.above"),
+  };
   let printing = false;
 
   function paint() {
@@ -22,7 +39,11 @@ export function showMaps(session) {
     if (picture === undefined) return;
     for (const { role, canvas } of discs) {
       const stretched = role === "residual" && picture.stretch !== 1 ? stretchText(picture.stretch) : "";
-      paintDisc(canvas, { picture, role, dipole: role === "projected", stretched, words }, surroundingsOf(canvas, printing));
+      paintDisc(
+        canvas,
+        { picture, role, dipole: role === "projected", stretched, words },
+        surroundingsOf(canvas, printing),
+      );
     }
     paintBar(bar, picture, surroundingsOf(bar, printing));
   }
@@ -43,10 +64,14 @@ export function showMaps(session) {
   );
 
   new ResizeObserver(paint).observe(need("fitted", HTMLElement));
-  for (const query of ["(prefers-color-scheme: dark)", "(forced-colors: active)", `(resolution: ${devicePixelRatio}dppx)`]) {
+  for (const query of ["(prefers-color-scheme: dark)", "(forced-colors: active)"]) {
     matchMedia(query).addEventListener("change", paint);
   }
-  for (const [name, now] of /** @type {const} */ ([["beforeprint", true], ["afterprint", false]])) {
+  watchRatio(paint);
+  for (const [name, now] of /** @type {const} */ ([
+    ["beforeprint", true],
+    ["afterprint", false],
+  ])) {
     addEventListener(name, () => {
       printing = now;
       paint();

@@ -4,6 +4,8 @@ import { typeset } from "../text/figures.js";
 import { word } from "../text/words.js";
 import { make, need } from "./element.js";
 
+/** @import { Session } from "../session/session.js" */
+
 /** @param {ReportNote} note */
 function noteElement(note) {
   const element = make("li", "", { class: `note-${note.severity}` });
@@ -12,7 +14,7 @@ function noteElement(note) {
   return element;
 }
 
-/** @param {import("../session/session.js").Session} session */
+/** @param {Session} session */
 export function showNotes(session) {
   const list = need("notes", HTMLUListElement);
   session.watch(

@@ -7,6 +7,8 @@ import { word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { make, need } from "./element.js";
 
+/** @import { Session } from "../session/session.js" */
+
 const REPORT_NAME = "inward-report.json";
 /** Longer values take the place of their meaning, which then stands below. */
 const ONE_LINE = 26;
@@ -17,7 +19,10 @@ function rowElement(row) {
   element.append(make("th", row.label, { scope: "row" }));
   if (row.value.length > ONE_LINE) {
     const both = make("td", "", { class: "long", colspan: "2" });
-    both.append(...row.value.split("; ").map((part) => make("div", typeset(part))), make("div", row.meaning, { class: "small" }));
+    both.append(
+      ...row.value.split("; ").map((part) => make("div", typeset(part))),
+      make("div", row.meaning, { class: "small" }),
+    );
     element.append(both);
   } else {
     const value = make("td", typeset(row.value), { class: "value" });
@@ -27,11 +32,12 @@ function rowElement(row) {
   return element;
 }
 
-/** @param {import("../session/session.js").Session} session */
+/** @param {Session} session */
 export function showNumbers(session) {
   const body = need("numbers", HTMLTableElement).tBodies[0];
   const copy = need("copy-table", HTMLButtonElement);
   const download = need("download-json", HTMLButtonElement);
+  let saving = false;
 
   copy.addEventListener("click", async () => {
     const rows = session.read().answer?.sheet?.rows;
@@ -40,10 +46,11 @@ export function showNumbers(session) {
     confirmOn(copy, await copyText(tableText(rows, heading)));
   });
   download.addEventListener("click", async () => {
-    download.disabled = true;
+    if (saving) return;
+    saving = true;
     const report = await session.report();
+    saving = false;
     if (report !== null) saveBlob(report, REPORT_NAME);
-    download.disabled = false;
   });
 
   session.watch(

@@ -3,6 +3,8 @@
 import { progressText, word } from "../text/words.js";
 import { need } from "./element.js";
 
+/** @import { Session } from "../session/session.js" */
+
 /** @param {SessionState} state */
 function statusText(state) {
   if (state.progress !== null) return progressText(state.progress.done, state.progress.total);
@@ -11,7 +13,7 @@ function statusText(state) {
   return word(`state.${state.phase}`);
 }
 
-/** @param {import("../session/session.js").Session} session */
+/** @param {Session} session */
 export function showStatus(session) {
   const status = need("status", HTMLElement);
   const progress = need("progress", HTMLProgressElement);

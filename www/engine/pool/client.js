@@ -7,6 +7,8 @@
  *             progress: ((step: FitProgress) => void) | undefined }} Waiting
  */
 
+/** @typedef {ReturnType<typeof makeClient>} EngineClient */
+
 /** @param {string} code @param {string} [details] @returns {Fault} */
 function clientFault(code, details) {
   return { code, message: "", where: null, hint: "", details };
