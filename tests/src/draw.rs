@@ -44,6 +44,16 @@ impl Draw {
         }
     }
 
+    /// A rotation about the origin.
+    pub fn rotation(&mut self) -> impl Fn(Vec3) -> Vec3 + use<> {
+        // The images of the axes.
+        let x = self.direction();
+        let z = x.cross(self.direction());
+        let z = z * (1.0 / z.norm());
+        let y = z.cross(x);
+        move |p| x * p[0] + y * p[1] + z * p[2]
+    }
+
     /// The numbers below `count` in chance order.
     pub fn order(&mut self, count: usize) -> Vec<usize> {
         let mut order: Vec<usize> = (0..count).collect();

@@ -1,4 +1,5 @@
 //! Sets of electrodes on the unit sphere.
+use crate::draw::Draw;
 use crate::place::data;
 use inward_core::Vec3;
 
@@ -67,17 +68,21 @@ impl Electrodes {
         }
     }
 
+    /// Positions on a head of this radius and centre, each off by up to `jitter` in a direction of its own.
+    pub fn measured(&self, radius: f64, centre: Vec3, jitter: f64, draw: &mut Draw) -> Vec<Vec3> {
+        let place = |&e: &Vec3| e * radius + centre + draw.direction() * draw.between(0.0, jitter);
+        self.directions.iter().map(place).collect()
+    }
+
     /// How many there are.
     pub fn count(&self) -> usize {
         self.labels.len()
     }
 
-    /// A table of positions, `place` applied to each direction. Written so that every digit comes back.
-    pub fn table(&self, place: impl Fn(Vec3) -> Vec3) -> String {
-        let rows = self.labels.iter().zip(&self.directions).map(|(label, &direction)| {
-            let p = place(direction);
-            format!("{label}\t{}\t{}\t{}\n", p[0], p[1], p[2])
-        });
+    /// A table of these positions, written so that every digit comes back.
+    pub fn table(&self, positions: &[Vec3]) -> String {
+        let rows =
+            self.labels.iter().zip(positions).map(|(label, p)| format!("{label}\t{}\t{}\t{}\n", p[0], p[1], p[2]));
         "label\tx\ty\tz\n".to_owned() + &rows.collect::<String>()
     }
 

@@ -11,7 +11,8 @@ pub struct PlainSeries {
 impl PlainSeries {
     /// Shells as (outer radius over the scalp's, S/m), innermost first, on a head of this radius in mm.
     pub fn new(shells: &[(f64, f64)], radius_mm: f64) -> Self {
-        let gains = (1..=1500).map(|n| gain(f64::from(n), shells)).collect();
+        // Further ones leave the range of numbers, long after their terms have become nothing.
+        let gains = (1..=1500).map(|n| gain(f64::from(n), shells)).take_while(|g| g.is_finite() && *g > 0.0).collect();
         Self { gains, scale: 1e3 / (4.0 * std::f64::consts::PI * shells[0].1 * radius_mm * radius_mm) }
     }
 

@@ -1,0 +1,65 @@
+// Fits timed through the module, as a script would: start, one map, a decomposition, thousands of maps.
+import { performance } from "node:perf_hooks";
+import { pathToFileURL } from "node:url";
+
+const dist = process.env.INWARD_DIST ?? new URL("../target/dist", import.meta.url).pathname;
+const seconds = (since) => (performance.now() - since) / 1000;
+
+let start = performance.now();
+const { openEngine } = await import(pathToFileURL(`${dist}/engine/inward.mjs`).href);
+const engine = await openEngine();
+engine.program();
+console.log(`start: ${(1000 * seconds(start)).toFixed(0)} ms`);
+
+/** Chance from a seed (a linear congruence is enough here), normal by the sum of twelve. */
+let state = 1n;
+const chance = () => {
+  state = (state * 6364136223846793005n + 1442695040888963407n) & 0xffffffffffffffffn;
+  return Number(state >> 11n) / 2 ** 53;
+};
+const normal = () => Array.from({ length: 12 }, chance).reduce((sum, v) => sum + v, -6);
+
+/** Electrodes spread over the upper two thirds of a head of 88 mm. */
+const spread = (count) =>
+  Array.from({ length: count }, (_, k) => {
+    const z = 1 - (1.35 * (k + 0.5)) / count;
+    const [r, angle] = [Math.sqrt(1 - z * z), k * Math.PI * (3 - Math.sqrt(5))];
+    return [88 * r * Math.cos(angle), 88 * r * Math.sin(angle), 88 * z];
+  });
+
+/** Potential of a dipole in an unbounded medium with noise: near enough to a real map to be timed. */
+function map(positions) {
+  const source = [30 * normal(), 30 * normal(), 30 * chance()];
+  const moment = [normal(), normal(), normal()];
+  return positions.map((p) => {
+    const d = p.map((v, i) => v - source[i]);
+    const size = Math.hypot(...d);
+    return (1e4 * d.reduce((sum, v, i) => sum + v * moment[i], 0)) / size ** 3 + 0.1 * normal();
+  });
+}
+
+const table = (columns, labels) => labels.map((label, i) => [label, ...columns.map((column) => column[i].toPrecision(7))].join("\t")).join("\n");
+
+for (const [electrodes, count] of [[32, 2000], [71, 71], [71, 2000], [128, 2000], [256, 1000]]) {
+  const positions = spread(electrodes);
+  const labels = positions.map((_, k) => `E${k + 1}`);
+  const request = {
+    electrodes: positions.map((p, k) => [labels[k], ...p].join("\t")).join("\n"),
+    maps: table(Array.from({ length: count }, () => map(positions)), labels),
+  };
+  start = performance.now();
+  const study = engine.open(request);
+  const opened = seconds(start);
+  start = performance.now();
+  for (let index = 0; index < study.count; index++) study.fit(index);
+  const fitted = seconds(start);
+  study.close();
+  start = performance.now();
+  engine.analyse(request);
+  const analysed = seconds(start);
+  console.log(
+    `${electrodes} electrodes, ${count} maps: open ${(1000 * opened).toFixed(0)} ms, ` +
+      `one by one ${((1e6 * fitted) / count).toFixed(0)} µs a fit (${(count / fitted).toFixed(0)} a second), ` +
+      `at once ${((1e6 * analysed) / count).toFixed(0)} µs with opening`,
+  );
+}

@@ -1,0 +1,311 @@
+// The engine as a module in Node: what scripts rely on. Run by tests/engine.rs; INWARD_DIST holds engine/inward.mjs.
+import assert from "node:assert/strict";
+import { readFileSync } from "node:fs";
+import { test } from "node:test";
+import { pathToFileURL } from "node:url";
+import { gunzipSync } from "node:zlib";
+
+import "./trap.js";
+
+const dist = process.env.INWARD_DIST;
+const { openEngine, ...others } = await import(pathToFileURL(`${dist}/engine/inward.mjs`).href);
+const engine = await openEngine();
+
+const example = (name) => readFileSync(new URL(`../../example_maps/${name}`, import.meta.url));
+const electrodes = example("listening_electrodes.tsv").toString();
+const maps = example("listening_maps.tsv").toString();
+const labels = maps.trim().split("\n").slice(1).map((line) => line.split("\t")[0]);
+
+/** A table of maps over the example's labels. */
+const table = (...columns) =>
+  labels.map((label, i) => [label, ...columns.map((column) => column(i))].join("\t")).join("\n");
+
+/** What a call throws, checked for the four properties of every error. */
+function thrown(call, what = "") {
+  try {
+    call();
+  } catch (error) {
+    assert.ok(error instanceof Error);
+    assert.match(error.code, /^[a-z]+(-[a-z]+)+$/);
+    assert.match(error.message, /\.$/);
+    assert.ok(typeof error.hint === "string" && error.hint.length > 5);
+    assert.ok(error.where === null || Object.keys(error.where).join() === "input,file,line,column,byte,label,map");
+    return error;
+  }
+  return assert.fail(`nothing was thrown ${what}`);
+}
+
+/** Every value is what JSON knows: no NaN, no undefined, no typed array, no class. */
+function assertPlain(value, path) {
+  if (value === null || typeof value === "string" || typeof value === "boolean") return;
+  if (typeof value === "number") return assert.ok(Number.isFinite(value), `${path} is ${value}`);
+  if (Array.isArray(value)) return value.forEach((item, i) => assertPlain(item, `${path}[${i}]`));
+  assert.equal(Object.getPrototypeOf(value), Object.prototype, `${path} is a plain object`);
+  for (const [key, item] of Object.entries(value)) assertPlain(item, `${path}.${key}`);
+}
+
+const KEYS = {
+  report: "electrodes format head inputs maps notes program settings version",
+  program: "build name version",
+  input: "name sha256",
+  head: "centre_mm fit_max_mm fit_rms_mm radius_mm shells",
+  shell: "conductivity_s_per_m outer_radius_mm tissue",
+  electrode: "label position_mm used",
+  map: "adjusted_rv degrees_of_freedom dipole fit measured name projected residual residual_variance variance_explained",
+  dipole:
+    "at_boundary canonical_mm depth_mm direction eccentricity nearest_site position_mm radial_share side strength strength_unit",
+  fit: "evaluations stopped_because",
+  failed: "error name",
+  error: "code hint message where",
+  note: "code message severity values where",
+  place: "byte column file input label line map",
+};
+
+function assertKeys(value, kind) {
+  assert.equal(Object.keys(value).sort().join(" "), KEYS[kind], kind);
+}
+
+function assertReport(report) {
+  assertPlain(report, "report");
+  assertKeys(report, "report");
+  assert.equal(report.format, "inward-report");
+  assert.equal(report.version, 1);
+  assertKeys(report.program, "program");
+  report.inputs.forEach((input) => assertKeys(input, "input"));
+  assertKeys(report.head, "head");
+  report.head.shells.forEach((shell) => assertKeys(shell, "shell"));
+  report.electrodes.forEach((electrode) => assertKeys(electrode, "electrode"));
+  for (const map of report.maps) {
+    if ("error" in map) {
+      assertKeys(map, "failed");
+      assertKeys(map.error, "error");
+      continue;
+    }
+    assertKeys(map, "map");
+    assertKeys(map.dipole, "dipole");
+    assertKeys(map.fit, "fit");
+    const used = report.electrodes.filter((electrode) => electrode.used).length;
+    assert.equal(map.degrees_of_freedom, used - 7);
+    for (const layer of [map.measured, map.projected, map.residual]) {
+      assert.equal(layer.length, used);
+      assert.ok(Math.abs(layer.reduce((sum, v) => sum + v, 0)) < 1e-9 * Math.max(...layer.map(Math.abs), 1), "average reference");
+    }
+    map.measured.forEach((v, i) => assert.ok(Math.abs(v - map.projected[i] - map.residual[i]) < 1e-12));
+  }
+  for (const note of report.notes) {
+    assertKeys(note, "note");
+    assert.match(note.severity, /^(info|warning)$/);
+    assert.match(note.message, /\.$/);
+    if (note.where !== null) assertKeys(note.where, "place");
+  }
+  // As text: JSON does not know the sign of zero.
+  assert.equal(JSON.stringify(JSON.parse(JSON.stringify(report))), JSON.stringify(report));
+  assert.deepEqual(structuredClone(report), report);
+}
+
+test("the module exports openEngine alone", () => {
+  assert.deepEqual(Object.keys(others), []);
+});
+
+test("analyse gives a report with every key", () => {
+  const report = engine.analyse({ electrodes, maps });
+  assertReport(report);
+  assert.equal(report.maps.length, 4);
+  assert.match(report.program.build, /^[0-9a-f]{12}$/);
+  assert.equal(report.maps[0].dipole.nearest_site, "C3");
+  assert.ok(report.maps[0].variance_explained > 0.97);
+  assert.equal(report.maps[0].dipole.strength_unit, "relative");
+});
+
+test("electrodes left out are standard positions, an empty text is an error", () => {
+  const report = engine.analyse({ maps });
+  assertReport(report);
+  assert.equal(report.head.radius_mm, 88);
+  assert.deepEqual(report.head.centre_mm, [0, 0, 0]);
+  assert.ok(report.notes.some((note) => note.code === "standard-positions"));
+  assert.equal(thrown(() => engine.analyse({ electrodes: "", maps })).code, "input-empty");
+  assert.equal(thrown(() => engine.analyse({ electrodes, maps: "" })).code, "input-empty");
+});
+
+test("bytes and text give the same report", () => {
+  const bytes = engine.analyse({ electrodes: new Uint8Array(Buffer.from(electrodes)), maps: new Uint8Array(Buffer.from(maps)) });
+  assert.deepEqual(bytes, engine.analyse({ electrodes, maps }));
+});
+
+test("open, fit and close say the same as analyse", () => {
+  const whole = engine.analyse({ electrodes, maps, settings: { mapUnit: "uV", exclude: ["Cz"] } });
+  const study = engine.open({ electrodes, maps, settings: { mapUnit: "uV", exclude: ["Cz"] } });
+  assert.equal(study.count, 4);
+  assert.deepEqual(study.head, whole.head);
+  assert.deepEqual(study.electrodes, whole.electrodes);
+  assert.deepEqual(study.notes, whole.notes);
+  for (const index of [3, 0, 2, 1, 0]) assert.deepEqual(study.fit(index), whole.maps[index]);
+  assert.deepEqual(study.assess(1, []), whole.maps[1]);
+  assert.equal(thrown(() => study.fit(4)).code, "map-index");
+  assert.equal(thrown(() => study.assess(0, ["everything"])).code, "settings-unknown");
+  study.close();
+  assert.equal(thrown(() => study.fit(0)).code, "study-closed");
+  study.close();
+});
+
+test("odd indices are errors, and the engine goes on", () => {
+  const study = engine.open({ electrodes, maps });
+  for (const index of [-1, 1.5, NaN, 1e12, undefined, "x"]) {
+    // WebAssembly takes an index as a whole number of 32 bits: whatever comes of it, it is a fit or an error of ours.
+    try {
+      assertPlain(study.fit(index), "fit");
+    } catch (error) {
+      assert.notEqual(error.code, "engine-trap", String(index));
+      assert.equal(typeof error.code, "string", `${index}: ${error}`);
+    }
+  }
+  assert.equal(study.fit(0).name, "left tap");
+});
+
+test("a map that cannot be fitted stands among the others with its error", () => {
+  const report = engine.analyse({ maps: table((i) => Math.sin(i), () => 7, (i) => (i === 3 ? "n/a" : i % 5)) });
+  assertReport(report);
+  assert.ok("dipole" in report.maps[0]);
+  assert.equal(report.maps[1].error.code, "map-constant");
+  assert.equal(report.maps[2].error.code, "map-incomplete");
+  assert.equal(thrown(() => engine.analyse({ maps: table(() => 7) })).code, "map-constant");
+});
+
+test("what is absent is null, never missing", () => {
+  const report = engine.analyse({ maps: table((i) => Math.sin(i), () => 7) });
+  assertReport(report);
+  const { where } = report.maps[1].error;
+  assertKeys(where, "place");
+  assert.equal(where.file, null);
+  assert.equal(where.map, report.maps[1].name);
+  assert.equal(report.settings.head, null);
+});
+
+test("unknown settings are refused", () => {
+  const refused = [
+    { colour: "red" },
+    { mapUnit: "mV" },
+    { exclude: "Cz" },
+    { exclude: [3] },
+    { assess: ["everything"] },
+    { head: { radius: 80 } },
+    { head: { shells: [{ tissue: "brain", ratio: 1 }] } },
+    { head: { centre_mm: [0, 0] } },
+    { head: { radius_mm: "wide" } },
+    { head: [] },
+    { head: { shells: [["brain", 1, 0.33]] } },
+    { exclude: null },
+    "relative",
+    7,
+    [],
+  ];
+  for (const settings of refused) {
+    const { code } = thrown(() => engine.analyse({ electrodes, maps, settings }), JSON.stringify(settings));
+    assert.equal(code, "settings-unknown", JSON.stringify(settings));
+  }
+  for (const request of [{ electrodes, maps, colour: "red" }, { electrodes, maps: 3 }, undefined, null, "maps"]) {
+    assert.equal(typeof thrown(() => engine.analyse(request), JSON.stringify(request)).code, "string");
+  }
+  for (const head of [{ radius_mm: 500 }, { radius_mm: NaN }, { centre_mm: [0, NaN, 0] }, { shells: [] }]) {
+    const { code } = thrown(() => engine.analyse({ electrodes, maps, settings: { head } }), JSON.stringify(head));
+    assert.match(code, /^(head-invalid|settings-unknown)$/, JSON.stringify(head));
+  }
+});
+
+test("settings left out and settings given as defaults mean the same", () => {
+  const plain = engine.analyse({ electrodes, maps });
+  for (const settings of [undefined, {}, { mapUnit: "relative" }, { exclude: [], assess: [] }]) {
+    assert.deepEqual(engine.analyse({ electrodes, maps, settings }), plain);
+  }
+});
+
+test("units scale the strength alone", () => {
+  const micro = engine.analyse({ electrodes, maps, settings: { mapUnit: "uV" } }).maps[0];
+  const volt = engine.analyse({ electrodes, maps, settings: { mapUnit: "V" } }).maps[0];
+  assert.equal(micro.dipole.strength_unit, "nAm");
+  assert.ok(Math.abs(volt.dipole.strength / micro.dipole.strength / 1e6 - 1) < 1e-12);
+  assert.deepEqual(volt.dipole.position_mm, micro.dipole.position_mm);
+});
+
+test("errors point to the place", () => {
+  const lines = electrodes.trim().split("\n");
+  lines[5] = lines[5].replace(/\S+$/, "far");
+  const { code, where } = thrown(() => engine.analyse({ electrodes: lines.join("\n"), maps }));
+  assert.equal(code, "number-expected");
+  assert.deepEqual({ ...where }, { input: "electrodes", file: null, line: 6, column: 4, byte: null, label: labels[4], map: null });
+  const bytes = new Uint8Array(Buffer.from(maps));
+  bytes[40] = 0xff;
+  const encoding = thrown(() => engine.analyse({ electrodes, maps: bytes }));
+  assert.equal(encoding.code, "input-encoding");
+  assert.equal(encoding.where.byte, 41);
+});
+
+test("the caller's bytes are left alone and may change afterwards", () => {
+  const bytes = new Uint8Array(Buffer.from(maps));
+  const study = engine.open({ electrodes, maps: bytes });
+  assert.deepEqual(Buffer.from(bytes).toString(), maps);
+  bytes.fill(0);
+  assert.equal(study.fit(0).name, "left tap");
+  study.close();
+});
+
+test("after a trap the engine goes on with a fresh instance", () => {
+  const expected = engine.analyse({ electrodes, maps });
+  globalThis.armTrap();
+  const error = thrown(() => engine.analyse({ electrodes, maps }));
+  assert.equal(error.code, "engine-trap");
+  assert.match(error.details, /RuntimeError/);
+  assert.deepEqual(engine.analyse({ electrodes, maps }), expected);
+});
+
+test("an open study survives a trap by opening itself again", () => {
+  const study = engine.open({ electrodes, maps });
+  const other = engine.open({ maps });
+  const expected = [study.fit(2), other.fit(1)];
+  globalThis.armTrap();
+  assert.equal(thrown(() => study.fit(2)).code, "engine-trap");
+  assert.deepEqual(study.fit(2), expected[0]);
+  assert.deepEqual(other.fit(1), expected[1]);
+  study.close();
+  other.close();
+  assert.equal(thrown(() => study.fit(0)).code, "study-closed");
+});
+
+test("two engines do not disturb each other", async () => {
+  const second = await openEngine();
+  const study = second.open({ electrodes, maps });
+  globalThis.armTrap();
+  assert.equal(thrown(() => engine.analyse({ electrodes, maps })).code, "engine-trap");
+  assert.equal(study.fit(0).name, "left tap");
+});
+
+test("many studies do not fill the memory", () => {
+  for (let k = 0; k < 60; k++) {
+    const study = engine.open({ electrodes, maps });
+    study.fit(0);
+    study.close();
+  }
+});
+
+test("65,536 maps are read, one more is an error", { timeout: 300_000 }, () => {
+  const wide = (count) => labels.slice(0, 12).map((label, i) => label + `\t${i % 7}.${i}`.repeat(count)).join("\n");
+  const study = engine.open({ maps: wide(65_536) });
+  assert.equal(study.count, 65_536);
+  assert.equal(study.fit(65_535).degrees_of_freedom, 5);
+  study.close();
+  assert.equal(thrown(() => engine.open({ maps: wide(65_537) })).code, "maps-too-many");
+});
+
+test("the wasm in module and page is the same and holds no path of the machine that built it", () => {
+  const packed = (text, pattern) => gunzipSync(Buffer.from(pattern.exec(text)[1], "base64"));
+  const module = readFileSync(`${dist}/engine/inward.mjs`, "utf8");
+  const page = readFileSync(`${dist}/inward.html`, "utf8");
+  const inModule = packed(module, /WASM_GZIP_BASE64\s*=\s*"([^"]+)"/);
+  const inPage = packed(page, /<script[^>]*id="wasm"[^>]*>([^<]+)</);
+  assert.ok(inModule.equals(inPage));
+  for (const text of [module, page, inModule.toString("latin1")]) {
+    for (const path of [process.env.HOME, ".cargo/registry", ".rustup/toolchains", new URL("../..", import.meta.url).pathname]) {
+      assert.ok(!text.includes(path), `${path} stands in the bundle`);
+    }
+  }
+});

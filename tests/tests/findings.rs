@@ -1,0 +1,370 @@
+//! Every error and every note, brought about by an input that deserves it.
+use inward_core::head::ShellSpec;
+use inward_core::report::{ErrorReport, HeadSettings, hint};
+use inward_core::{Code, Error, MapReport, Report, Request, Settings, Study, Vec3, analyse};
+use inward_tests::{Draw, Electrodes, example};
+use std::collections::BTreeSet;
+
+fn electrodes() -> String {
+    example("listening_electrodes.tsv")
+}
+
+fn maps() -> String {
+    example("listening_maps.tsv")
+}
+
+fn run(electrodes: Option<&[u8]>, maps: &[u8], settings: Settings) -> Result<Report, Error> {
+    analyse(&Request { electrodes, maps, settings, build: None })
+}
+
+/// The error of an input, in words.
+fn error(electrodes: Option<&str>, maps: &str, settings: Settings) -> ErrorReport {
+    (&run(electrodes.map(str::as_bytes), maps.as_bytes(), settings).expect_err("an error")).into()
+}
+
+fn plain() -> Settings {
+    Settings::default()
+}
+
+fn head(change: impl FnOnce(&mut HeadSettings)) -> Settings {
+    let mut head = HeadSettings::default();
+    change(&mut head);
+    Settings { head: Some(head), ..plain() }
+}
+
+/// The table with one line changed; lines count from 1, the header's is 1.
+fn with_line(table: &str, line: usize, change: impl Fn(&str) -> String) -> String {
+    table.lines().enumerate().map(|(k, text)| if k + 1 == line { change(text) } else { text.into() } + "\n").collect()
+}
+
+fn shell(tissue: &str, ratio: f64, conductivity: f64) -> ShellSpec {
+    ShellSpec { tissue: tissue.into(), ratio, conductivity }
+}
+
+/// Positions of the example moved somewhere else.
+fn moved(change: impl Fn(usize, Vec3) -> Vec3) -> String {
+    let mut table = String::from("label\tx\ty\tz\n");
+    for (k, line) in electrodes().lines().skip(1).enumerate() {
+        let row: Vec<&str> = line.split('\t').collect();
+        let p = change(k, Vec3(std::array::from_fn(|i| row[i + 1].parse().unwrap())));
+        table += &format!("{}\t{}\t{}\t{}\n", row[0], p[0], p[1], p[2]);
+    }
+    table
+}
+
+/// Every error that an input can cause, with the input that causes it.
+fn errors() -> Vec<(&'static str, ErrorReport)> {
+    let (e, m) = (electrodes(), maps());
+    let first_nine: String = m.lines().take(10).map(|line| format!("{line}\n")).collect();
+    let many: String = (0..513).map(|k| format!("E{k}\t{}\n", k % 7)).collect();
+    let wide = |count: usize| {
+        m.lines()
+            .skip(1)
+            .map(|line| format!("{}{}\n", line.split('\t').next().unwrap(), "\t1".repeat(count)))
+            .collect::<String>()
+    };
+    let mut all = vec![
+        ("input-empty", error(Some(&e), "", plain())),
+        ("input-empty", error(Some(&e), " \n\t\r\n", plain())),
+        ("input-empty", error(Some(""), &m, plain())),
+        ("input-too-large", error(Some(&e), &"a 1\n".repeat((64 << 18) + 1), plain())),
+        ("table-columns", error(Some(&e), "1 2\n3 4\n", plain())),
+        ("table-columns", error(Some("label\tx\ty\nA\t1\t2\nB\t3\t4\n"), &m, plain())),
+        ("table-columns", error(Some(&e), &with_line(&m, 4, |line| line.replacen("AF3", "", 1)), plain())),
+        ("table-ragged", error(Some(&e), &with_line(&m, 4, |line| format!("{line}\t7")), plain())),
+        ("number-expected", error(Some(&e), &with_line(&m, 4, |line| line.replacen("2.201", "two", 1)), plain())),
+        ("number-expected", error(Some(&e), &with_line(&m, 4, |line| line.replacen("2.201", "1e999", 1)), plain())),
+        ("number-expected", error(Some(&e), &with_line(&m, 4, |line| line.replacen("2.201", "inf", 1)), plain())),
+        ("number-expected", error(Some(&with_line(&e, 4, |line| line.replacen("85.7", "8S.7", 1))), &m, plain())),
+        ("label-duplicate", error(Some(&e), &with_line(&m, 4, |line| line.replacen("AF3", "fp1", 1)), plain())),
+        ("label-duplicate", error(Some(&with_line(&e, 4, |line| line.replacen("AF3", "Fp1", 1))), &m, plain())),
+        ("labels-unmatched", error(Some(&e), "Q1\t3\nQ2\t4\n", plain())),
+        ("labels-unmatched", error(None, "Q1\t3\nQ2\t4\n", plain())),
+        ("electrodes-too-few", error(Some(&e), &first_nine, plain())),
+        ("electrodes-too-few", error(None, &first_nine, plain())),
+        (
+            "electrodes-too-few",
+            error(
+                Some(&e),
+                &m,
+                Settings {
+                    exclude: m.lines().skip(10).map(|line| line.split('\t').next().unwrap().into()).collect(),
+                    ..plain()
+                },
+            ),
+        ),
+        ("electrodes-too-many", error(None, &many, plain())),
+        ("electrodes-too-many", error(Some(&many.replace('\t', "\t1\t2\t")), &m, plain())),
+        (
+            "electrodes-coincident",
+            error(Some(&moved(|k, p| if k == 5 { Vec3::new(-26.9, 94.2, 28.3) } else { p })), &m, plain()),
+        ),
+        ("electrodes-coincident", error(Some(&moved(|_, _| Vec3::new(1.0, 2.0, 3.0))), &m, plain())),
+        ("electrodes-collinear", error(Some(&moved(|k, _| Vec3::new(1.0, 2.0, 3.0) * k as f64)), &m, plain())),
+        ("electrodes-coplanar", error(Some(&moved(|_, p| Vec3::new(p[0], p[1], 7.0))), &m, plain())),
+        ("electrodes-coplanar", error(Some(&moved(|_, p| Vec3::new(p[0], p[1], p[0] - 2.0 * p[1]))), &m, plain())),
+        ("units-unrecognised", error(Some(&moved(|_, p| p * 7.0)), &m, plain())),
+        ("units-unrecognised", error(Some(&moved(|_, p| p * 1e-9)), &m, plain())),
+        ("maps-none", error(Some(&e), "label\nFp1\nFp2\n", plain())),
+        ("maps-too-many", error(Some(&e), &wide(65_537), plain())),
+        ("map-constant", error(Some(&e), &wide(1), plain())),
+        (
+            "map-incomplete",
+            error(
+                None,
+                "F3 1 n/a\nF4 2 n/a\nC3 n/a 3\nC4 1 1\nP3 2 2\nP4 3 1\nO1 1 2\nO2 2 3\nFz 3 1\nPz 1 2\nCz 2 3\n",
+                plain(),
+            ),
+        ),
+        ("head-invalid", error(Some(&e), &m, head(|head| head.radius_mm = Some(500.0)))),
+        ("head-invalid", error(Some(&e), &m, head(|head| head.radius_mm = Some(f64::NAN)))),
+        ("head-invalid", error(Some(&e), &m, head(|head| head.centre_mm = Some(Vec3::new(0.0, f64::INFINITY, 0.0))))),
+        ("head-invalid", error(Some(&e), &m, head(|head| head.centre_mm = Some(Vec3::new(-26.9, 94.2, 28.3))))),
+        ("head-invalid", error(Some(&e), &m, head(|head| head.shells = Some(Vec::new())))),
+        ("head-invalid", error(Some(&e), &m, head(|head| head.shells = Some(vec![shell("brain", 0.9, 0.33)])))),
+        (
+            "head-invalid",
+            error(
+                Some(&e),
+                &m,
+                head(|head| head.shells = Some(vec![shell("brain", 0.9, 0.0), shell("scalp", 1.0, 0.3)])),
+            ),
+        ),
+        (
+            "head-invalid",
+            error(
+                Some(&e),
+                &m,
+                head(|head| head.shells = Some(vec![shell("a", 0.9, 0.3), shell("b", 0.8, 0.3), shell("c", 1.0, 0.3)])),
+            ),
+        ),
+        ("settings-unknown", (&Settings::unknown("colour")).into()),
+    ];
+    let mut bytes = m.clone().into_bytes();
+    bytes[40] = 0xff;
+    all.push(("input-encoding", (&run(None, &bytes, plain()).unwrap_err()).into()));
+    let utf16: Vec<u8> = std::iter::once(0xfeff).chain(m.encode_utf16()).flat_map(u16::to_le_bytes).collect();
+    all.push(("input-encoding", (&run(None, &utf16, plain()).unwrap_err()).into()));
+    let study = Study::open(&Request { electrodes: None, maps: m.as_bytes(), settings: plain(), build: None }).unwrap();
+    all.push(("map-index", (&study.fit(4).unwrap_err()).into()));
+    all
+}
+
+#[test]
+fn every_error_has_its_code_a_sentence_and_a_next_step() {
+    let errors = errors();
+    for (expected, error) in &errors {
+        assert_eq!(error.code.as_str(), *expected, "{error:?}");
+        assert!(error.message.ends_with('.') && error.message.len() > 15, "{error:?}");
+        assert!(error.hint.ends_with('.') && error.hint.len() > 15, "{error:?}");
+    }
+    let met: BTreeSet<&str> = errors.iter().map(|(code, _)| *code).collect();
+    let known: BTreeSet<&str> =
+        Code::ALL.iter().filter(|code| !hint(**code).is_empty()).map(|code| code.as_str()).collect();
+    assert_eq!(met, known, "every error of the list is brought about");
+}
+
+#[test]
+fn errors_name_input_line_column_label_and_map() {
+    let (e, m) = (electrodes(), maps());
+    let place = error(Some(&e), &with_line(&m, 4, |line| line.replacen("1.351", "x", 1)), plain()).place.unwrap();
+    assert_eq!((place.input, place.line, place.column), (Some("maps"), Some(4), Some(3)));
+    assert_eq!((place.label.as_deref(), place.map.as_deref()), (Some("AF3"), Some("both ears")));
+    let place = error(Some(&with_line(&e, 6, |line| line.replacen('\t', "\tx", 1))), &m, plain()).place.unwrap();
+    assert_eq!(
+        (place.input, place.line, place.column, place.label.as_deref()),
+        (Some("electrodes"), Some(6), Some(2), Some("F7"))
+    );
+    // Lines are those of the text, empty ones and remarks counted.
+    let spaced = format!("# measured on Tuesday\n\n{}", with_line(&m, 4, |line| line.replacen("1.351", "x", 1)));
+    assert_eq!(error(Some(&e), &spaced, plain()).place.unwrap().line, Some(6));
+    let duplicate = error(Some(&e), &with_line(&m, 9, |line| line.replacen("F4", "AF3", 1)), plain());
+    assert!(duplicate.message.contains('4') && duplicate.message.contains('9'), "{}", duplicate.message);
+}
+
+#[test]
+fn one_bad_map_does_not_spoil_the_others() {
+    let m: String = maps()
+        .lines()
+        .enumerate()
+        .map(|(k, line)| {
+            let added = match k {
+                0 => "flat\tgap",
+                5 => "2\tn/a",
+                _ => "2\t1",
+            };
+            format!("{line}\t{added}\n")
+        })
+        .collect();
+    let report = run(Some(electrodes().as_bytes()), m.as_bytes(), plain()).unwrap();
+    let whole = run(Some(electrodes().as_bytes()), maps().as_bytes(), plain()).unwrap();
+    assert_eq!(report.maps[..4], whole.maps[..]);
+    let codes: Vec<&str> = report.maps[4..]
+        .iter()
+        .map(|map| match map {
+            MapReport::Failed { error, .. } => error.code.as_str(),
+            MapReport::Fitted(_) => "none",
+        })
+        .collect();
+    assert_eq!(codes, ["map-constant", "map-incomplete"]);
+}
+
+#[test]
+fn every_note_is_given_when_it_applies_and_not_otherwise() {
+    let (e, m) = (electrodes(), maps());
+    let notes = |electrodes: Option<&str>, maps: &str, settings: Settings| -> Vec<(&'static str, &'static str)> {
+        let report = run(electrodes.map(str::as_bytes), maps.as_bytes(), settings).unwrap();
+        assert!(report.notes.iter().all(|note| note.message.ends_with('.')));
+        report.notes.iter().map(|note| (note.code.as_str(), note.severity)).collect()
+    };
+    let micro = Settings { map_unit: inward_core::map::MapUnit::Microvolt, ..plain() };
+    let usual = notes(Some(&e), &m, micro.clone());
+    let codes: Vec<&str> = usual.iter().map(|(code, _)| *code).collect();
+    assert_eq!(
+        codes.iter().collect::<BTreeSet<_>>(),
+        ["axes-assumed", "average-referenced", "unit-recognised"].iter().collect::<BTreeSet<_>>()
+    );
+    let mut met: BTreeSet<&str> = codes.into_iter().collect();
+    let twelve: String = m.lines().take(13).map(|line| format!("{line}\n")).collect();
+    let unit = moved(|_, p| {
+        let p = p - Vec3::new(0.0, 6.0, 28.0);
+        p * (1.0 / p.norm())
+    });
+    // Sources so close under the scalp need hundreds of terms and more images than there may be.
+    let thin_skull = vec![shell("brain", 0.99997, 10.9), shell("scalp", 1.0, 0.0104)];
+    let cases: Vec<(&str, &str, Option<String>, String, Settings)> = vec![
+        ("standard-positions", "info", None, m.clone(), micro.clone()),
+        ("unit-sphere-scaled", "info", Some(unit), m.clone(), micro.clone()),
+        ("few-electrodes", "warning", Some(e.clone()), twelve.clone(), micro.clone()),
+        ("positions-without-value", "info", Some(e.clone()), twelve, micro.clone()),
+        ("values-without-position", "warning", Some(e.clone()), format!("{m}Q\t1\t2\t3\t4\n"), micro.clone()),
+        ("excluded", "info", Some(e.clone()), m.clone(), Settings { exclude: vec!["cz".into()], ..micro.clone() }),
+        (
+            "exclude-unmatched",
+            "warning",
+            Some(e.clone()),
+            m.clone(),
+            Settings { exclude: vec!["Q".into()], ..micro.clone() },
+        ),
+        ("unit-relative", "info", Some(e.clone()), m.clone(), plain()),
+        ("sphere-deviation", "warning", Some(moved(|k, p| if k == 3 { p * 1.5 } else { p })), m.clone(), micro.clone()),
+        (
+            "series-only",
+            "info",
+            Some(e.clone()),
+            m.clone(),
+            Settings { head: Some(HeadSettings { shells: Some(thin_skull), ..HeadSettings::default() }), ..micro },
+        ),
+    ];
+    for (code, severity, electrodes, maps, settings) in cases {
+        let found = notes(electrodes.as_deref(), &maps, settings);
+        assert!(found.contains(&(code, severity)), "{code}: {found:?}");
+        assert!(!usual.contains(&(code, severity)), "{code}");
+        met.insert(code);
+    }
+    let known: BTreeSet<&str> =
+        Code::ALL.iter().filter(|code| hint(**code).is_empty()).map(|code| code.as_str()).collect();
+    assert_eq!(met, known, "every note of the list is brought about");
+}
+
+/// Whatever is typed, the outcome is a finite report or an error with a code; nothing panics.
+#[test]
+fn spoilt_tables_are_answered_or_refused() {
+    let mut draw = Draw::from(2024);
+    let pieces = [
+        "\t",
+        "\n",
+        "\r",
+        ";",
+        ",",
+        " ",
+        "\"",
+        "#",
+        "-",
+        "1e308",
+        "1e-320",
+        "-1e308",
+        "0",
+        "nan",
+        "n/a",
+        "é",
+        "\u{feff}",
+        "\0",
+        "label",
+        "Fp1",
+        "99999999999999999999",
+    ];
+    let mut answered = 0;
+    for round in 0..3000 {
+        let spoil = |text: String, draw: &mut Draw| {
+            let mut text: Vec<char> = text.chars().collect();
+            for _ in 0..=(draw.between(0.0, 3.0) as usize) {
+                let at = draw.between(0.0, text.len() as f64) as usize;
+                match draw.between(0.0, 4.0) as usize {
+                    0 => drop(text.drain(at..(at + 1 + draw.between(0.0, 8.0) as usize).min(text.len()))),
+                    1 => text.truncate(at.max(1)),
+                    _ => {
+                        let piece = pieces[draw.between(0.0, pieces.len() as f64) as usize];
+                        text.splice(at..at, piece.chars());
+                    }
+                }
+            }
+            text.into_iter().collect::<String>()
+        };
+        let e = if round % 3 == 0 { electrodes() } else { spoil(electrodes(), &mut draw) };
+        let m = if round % 3 == 1 { maps() } else { spoil(maps(), &mut draw) };
+        match run((round % 5 != 0).then_some(e.as_bytes()), m.as_bytes(), plain()) {
+            Ok(report) => {
+                answered += 1;
+                for map in &report.maps {
+                    if let MapReport::Fitted(map) = map {
+                        let d = &map.dipole;
+                        let numbers = [map.residual_variance, map.adjusted_rv, d.strength, d.depth_mm, d.eccentricity];
+                        let all = numbers
+                            .iter()
+                            .chain(&map.measured)
+                            .chain(&map.projected)
+                            .chain(&map.residual)
+                            .chain(&d.position_mm.0)
+                            .chain(&d.direction.0);
+                        assert!(all.into_iter().all(|v| v.is_finite()), "round {round}: {map:?}");
+                        assert!((0.0..=1.0).contains(&map.residual_variance), "round {round}: {map:?}");
+                    }
+                }
+            }
+            Err(error) => assert!(!hint(error.finding().code).is_empty(), "{error:?}"),
+        }
+    }
+    println!("{answered} of 3000 spoilt pairs were answered");
+    assert!(answered > 100 && answered < 2900);
+}
+
+/// Values near the ends of what a number can hold are fitted as any others, or refused; never answered wrongly.
+#[test]
+fn very_large_and_very_small_values_are_fitted_or_refused() {
+    let set = Electrodes::set(32);
+    let values: Vec<f64> = Draw::from(3).noise(32);
+    let fit = |scale: f64| {
+        let scaled: Vec<f64> = values.iter().map(|v| v * scale).collect();
+        run(None, set.maps(&[("m", &scaled)]).as_bytes(), plain()).map(|report| match &report.maps[0] {
+            MapReport::Fitted(map) => (**map).clone(),
+            MapReport::Failed { .. } => panic!("an only map that fails is an error"),
+        })
+    };
+    let expected = fit(1.0).unwrap();
+    for scale in [1e-300, 1e-150, 1e-90, 1e90, 1e150, 1e300] {
+        let Ok(map) = fit(scale) else {
+            assert!(!(1e-100..1e100).contains(&scale), "{scale:e} is refused");
+            continue;
+        };
+        let d = &map.dipole;
+        assert!(
+            (map.residual_variance - expected.residual_variance).abs() < 1e-9,
+            "{scale:e}: {}",
+            map.residual_variance
+        );
+        assert!((d.direction - expected.dipole.direction).norm() < 1e-6, "{scale:e}: {d:?}");
+        assert!((d.strength / scale / expected.dipole.strength - 1.0).abs() < 1e-6, "{scale:e}: {d:?}");
+        assert!(map.measured.iter().chain(&map.projected).all(|v| v.is_finite()), "{scale:e}");
+    }
+}
