@@ -152,6 +152,8 @@ interface Glue {
   initSync(source: { module: WebAssembly.Module }): unknown;
   analyse(request: EngineRequest): InwardReport;
   open(request: EngineRequest): GlueStudy;
+  /** What a table is, by its content. */
+  kindOf(content: InwardContent): InputKind;
   program(): Program;
 }
 
@@ -178,6 +180,7 @@ interface Study {
 interface Engine {
   analyse(request: EngineRequest): InwardReport;
   open(request: EngineRequest): Study;
+  kindOf(content: InwardContent): InputKind;
   program(): Program;
 }
 
@@ -193,6 +196,7 @@ interface FitProgress {
 /** Messages to the worker. `request` rides along with the first task that carries the study's key. */
 type WorkerTask =
   | { kind: "program" }
+  | { kind: "kindOf"; content: InwardContent }
   | { kind: "open"; key: number; request?: EngineRequest }
   | { kind: "fitAll"; key: number; request?: EngineRequest }
   | { kind: "sheet"; key: number; request?: EngineRequest; index: number }

@@ -129,6 +129,7 @@ export function makeEngine(instantiate) {
   return {
     analyse: (request) => call((current) => current.analyse(request)),
     open,
+    kindOf: (content) => call((current) => current.kindOf(content)),
     program: () => call((current) => current.program()),
   };
 }

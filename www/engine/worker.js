@@ -92,6 +92,8 @@ async function answerTask(message) {
   switch (message.kind) {
     case "program":
       return self.postMessage({ id, value: workerEngine.program() });
+    case "kindOf":
+      return self.postMessage({ id, value: workerEngine.kindOf(message.content) });
     case "open": {
       const study = studyOf(message.key);
       return self.postMessage({ id, value: { preamble: study.preamble(), count: study.count } });

@@ -16,7 +16,8 @@ async function inputsOfTransfer(transfer) {
 async function takeTransfer(session, transfer) {
   try {
     const inputs = await inputsOfTransfer(transfer);
-    if (inputs.length > 0) session.put(sortInputs(inputs));
+    const kinds = await Promise.all(inputs.map((input) => session.kindOf(input.content)));
+    if (inputs.length > 0) session.put(sortInputs(inputs, kinds));
   } catch (error) {
     session.fail(error);
   }

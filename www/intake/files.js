@@ -1,14 +1,6 @@
 /** Files and pasted text become inputs. Bytes stay as they are; the engine decides on their encoding. */
 
-import { kindOf } from "./kind.js";
-
-const LOOK_AT_BYTES = 1 << 17;
 const SHOW_CHARACTERS = 1 << 18;
-
-/** @param {InwardContent} content */
-export function contentKind(content) {
-  return kindOf(typeof content === "string" ? content : new TextDecoder().decode(content.subarray(0, LOOK_AT_BYTES)));
-}
 
 /** What a text field shows of an input; null when it is too long for one. @param {Input} input */
 export function shownText(input) {
@@ -25,14 +17,8 @@ export async function inputOfFile(file) {
   }
 }
 
-/** Sorts what came in together by its content. @param {Input[]} inputs */
-export function sortInputs(inputs) {
-  /** @type {Partial<Record<InputKind, Input>>} */
-  const sorted = {};
-  for (const input of inputs) {
-    const kind = contentKind(input.content);
-    if (sorted[kind] !== undefined) throw Object.assign(new Error(""), { code: "inputs-same-kind" });
-    sorted[kind] = input;
-  }
-  return sorted;
+/** Puts what came in together in its places; one of a kind. @param {Input[]} inputs @param {InputKind[]} kinds */
+export function sortInputs(inputs, kinds) {
+  if (new Set(kinds).size < kinds.length) throw Object.assign(new Error(""), { code: "inputs-same-kind" });
+  return Object.fromEntries(inputs.map((input, at) => [kinds[at], input]));
 }

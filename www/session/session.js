@@ -27,6 +27,12 @@ export function makeSession() {
 
   /** @type {EngineClient | null} */
   let client = null;
+  /** @type {(client: EngineClient) => void} */
+  let announce = () => {};
+  /** @type {Promise<EngineClient>} */
+  const started = new Promise((resolve) => {
+    announce = resolve;
+  });
   /** The study being opened, until it is answered or has failed. @type {number | null} */
   let pending = null;
 
@@ -123,8 +129,19 @@ export function makeSession() {
     /** The engine has answered its first call. @param {EngineClient} ready @param {Program} program */
     engineReady(ready, program) {
       client = ready;
+      announce(ready);
       store.write({ phase: store.read().phase === "failed" ? "failed" : "ready", program });
       if (store.read().inputs.maps !== null) ask();
+    },
+
+    /**
+     * What a table is, by its content; told as soon as the engine runs.
+     * @param {InwardContent} content
+     * @returns {Promise<InputKind>}
+     */
+    async kindOf(content) {
+      const engine = await started;
+      return engine.ask({ kind: "kindOf", content });
     },
 
     /**

@@ -1,6 +1,6 @@
 /** The input column: two tables and the unit of the map. It folds to a few lines when it has done its work. */
 
-import { contentKind, inputOfFile, shownText } from "../intake/files.js";
+import { inputOfFile, shownText } from "../intake/files.js";
 import { word } from "../text/words.js";
 import { need } from "./element.js";
 
@@ -28,10 +28,16 @@ function showSlot(session, kind) {
   let own = null;
   let timer = 0;
 
+  /** Takes what was put here by hand, and says so if it reads like the other kind. @param {Input | null} input */
+  const take = async (input) => {
+    session.put({ [kind]: input });
+    const read = input === null ? kind : await session.kindOf(input.content);
+    if (session.read().inputs[kind] === input) misplaced.hidden = read === kind;
+  };
   const takeField = () => {
     clearTimeout(timer);
     own = field.value.trim() === "" ? null : { name: "", content: field.value };
-    session.put({ [kind]: own });
+    take(own).catch(session.fail);
   };
   field.addEventListener("input", () => {
     clearTimeout(timer);
@@ -44,13 +50,13 @@ function showSlot(session, kind) {
   file.addEventListener("change", async () => {
     const picked = file.files?.[0];
     if (picked === undefined) return;
+    // The same file can be picked again after it has changed.
+    file.value = "";
     try {
-      session.put({ [kind]: await inputOfFile(picked) });
+      await take(await inputOfFile(picked));
     } catch (error) {
       session.fail(error);
     }
-    // The same file can be picked again after it has changed.
-    file.value = "";
   });
   clear.addEventListener("click", () => {
     session.put({ [kind]: null });
@@ -72,7 +78,7 @@ function showSlot(session, kind) {
       clear.hidden = input === null;
       need(`${kind}-name`, HTMLElement).textContent = input?.name ?? "";
       need(`${kind}-loaded`, HTMLElement).textContent = inputName(input, kind);
-      misplaced.hidden = input === null || contentKind(input.content) === kind;
+      misplaced.hidden = true;
     },
   );
 }
