@@ -114,6 +114,8 @@ codes! {
     TableRagged = "table-ragged",
     /// Error: a field that should hold a number.
     NumberExpected = "number-expected",
+    /// Error: a number too large or too small to be computed with.
+    NumberRange = "number-range",
     /// Error: a label that stands twice.
     LabelDuplicate = "label-duplicate",
     /// Error: no label of the maps is among the electrodes.

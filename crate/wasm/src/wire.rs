@@ -2,7 +2,7 @@
 
 use inward_core::report::ErrorReport;
 use inward_core::{Code, Error, Finding, Place, Settings};
-use js_sys::{Object, Reflect, Uint8Array};
+use js_sys::{Array, Object, Reflect, Uint8Array};
 use serde::Serialize;
 use wasm_bindgen::prelude::*;
 
@@ -41,30 +41,32 @@ fn settings(given: &JsValue) -> Result<Settings, JsValue> {
     let unknown = |problem: String| thrown(&Settings::unknown(problem));
     let settings: Settings =
         serde_wasm_bindgen::from_value(given.clone()).map_err(|problem| unknown(words(&problem)))?;
-    match unknown_key(given, &plain(&settings)?) {
-        Some(key) => Err(unknown(format!("there is no setting `{key}`"))),
+    match misplaced(given, &plain(&settings)?) {
+        Some(path) => Err(unknown(format!("nothing of this kind belongs at `settings{path}`"))),
         None => Ok(settings),
     }
+}
+
+/// The path of a key in `given` that `understood` lacks, or of a list where it has none.
+fn misplaced(given: &JsValue, understood: &JsValue) -> Option<String> {
+    if !given.is_object() {
+        return None;
+    }
+    if !understood.is_object() || Array::is_array(given) != Array::is_array(understood) {
+        return Some(String::new());
+    }
+    Object::keys(given.unchecked_ref::<Object>()).iter().filter_map(|key| key.as_string()).find_map(|key| {
+        let part = |of: &JsValue| Reflect::get(of, &key.as_str().into()).unwrap_or(JsValue::UNDEFINED);
+        let known = Reflect::has(understood, &key.as_str().into()).unwrap_or(false);
+        let rest = if known { misplaced(&part(given), &part(understood))? } else { String::new() };
+        Some(format!(".{key}{rest}"))
+    })
 }
 
 /// What `serde` says, without the name of the JavaScript class it is wrapped in.
 pub(crate) fn words(problem: &serde_wasm_bindgen::Error) -> String {
     let text = problem.to_string();
     text.strip_prefix("Error: ").unwrap_or(&text).to_owned()
-}
-
-/// The path of a key in `given` that `understood` lacks.
-fn unknown_key(given: &JsValue, understood: &JsValue) -> Option<String> {
-    if !given.is_object() {
-        return None;
-    }
-    Object::keys(given.unchecked_ref::<Object>()).iter().filter_map(|key| key.as_string()).find_map(|key| {
-        if !understood.is_object() || !Reflect::has(understood, &key.as_str().into()).unwrap_or(false) {
-            return Some(key);
-        }
-        let part = |of: &JsValue| Reflect::get(of, &key.as_str().into()).unwrap_or(JsValue::UNDEFINED);
-        unknown_key(&part(given), &part(understood)).map(|rest| format!("{key}.{rest}"))
-    })
 }
 
 /// The content of an input, a string or bytes; `None` where it is left out.

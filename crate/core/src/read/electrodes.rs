@@ -1,4 +1,4 @@
-use super::table::{LABEL_NAMES, Row, is_missing, number};
+use super::table::{LABEL_NAMES, Row, expect_number, is_missing, number};
 use super::{MOST_ELECTRODES, Table, decode};
 use crate::electrode::{Electrode, Label};
 use crate::finding::{Code, Error, Finding, Place};
@@ -13,7 +13,7 @@ const INPUT: &str = "electrodes";
 /// the first column that holds words, and the first three others. A missing position (`n/a`, empty) is allowed.
 ///
 /// # Errors
-/// Those of [`decode`] and [`Table::read`]; `table-columns`, `number-expected`, `label-duplicate`,
+/// Those of [`decode`] and [`Table::read`]; `table-columns`, `number-expected`, `number-range`, `label-duplicate`,
 /// `electrodes-too-many`.
 pub fn read_electrodes(bytes: &[u8]) -> Result<Vec<Electrode>, Error> {
     let table = Table::read(decode(bytes, INPUT)?, INPUT)?;
@@ -63,18 +63,15 @@ fn columns(table: &Table<'_>) -> Result<Columns, Error> {
 }
 
 fn electrode(row: &Row<'_>, columns: &Columns) -> Result<Electrode, Error> {
-    let field = |column: usize| row.field(column);
     let label = label(row, columns.label, INPUT)?;
     let mut position = None;
     if let Some(xyz) = columns.xyz
-        && !xyz.iter().any(|&column| is_missing(field(column)))
+        && !xyz.iter().any(|&column| is_missing(row.field(column)))
     {
         let mut coordinates = [0.0; 3];
         for (coordinate, column) in coordinates.iter_mut().zip(xyz) {
-            *coordinate = number(field(column)).ok_or_else(|| {
-                let place = Place { label: Some(label.to_string()), ..Place::field(INPUT, row.line, column + 1) };
-                Finding::new(Code::NumberExpected).at(place).with("found", field(column))
-            })?;
+            let place = || Place { label: Some(label.to_string()), ..Place::field(INPUT, row.line, column + 1) };
+            *coordinate = expect_number(row.field(column), place)?;
         }
         position = Some(Vec3(coordinates));
     }

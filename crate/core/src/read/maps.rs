@@ -1,5 +1,5 @@
 use super::electrodes::{label, refuse_duplicates};
-use super::table::{LABEL_NAMES, is_missing, number};
+use super::table::{LABEL_NAMES, expect_number, is_missing};
 use super::{MOST_ELECTRODES, MOST_MAPS, Table, decode};
 use crate::finding::{Code, Error, Finding, Place};
 use crate::map::Maps;
@@ -14,7 +14,7 @@ const INPUT: &str = "maps";
 ///
 /// # Errors
 /// Those of [`decode`] and [`Table::read`]; `table-columns`, `maps-none`, `maps-too-many`, `electrodes-too-many`,
-/// `number-expected`, `label-duplicate`.
+/// `number-expected`, `number-range`, `label-duplicate`.
 pub fn read_maps(bytes: &[u8]) -> Result<Maps, Error> {
     let table = Table::read(decode(bytes, INPUT)?, INPUT)?;
     let first_line = table.header.as_ref().or(table.rows.first()).map_or(1, |row| row.line);
@@ -52,14 +52,12 @@ pub fn read_maps(bytes: &[u8]) -> Result<Maps, Error> {
             if is_missing(field) {
                 continue;
             }
-            *value = number(field).ok_or_else(|| {
-                let place = Place {
-                    label: Some(label.to_string()),
-                    map: Some(name.clone()),
-                    ..Place::field(INPUT, row.line, column + 1)
-                };
-                Finding::new(Code::NumberExpected).at(place).with("found", field)
-            })?;
+            let place = || Place {
+                label: Some(label.to_string()),
+                map: Some(name.clone()),
+                ..Place::field(INPUT, row.line, column + 1)
+            };
+            *value = expect_number(field, place)?;
         }
     }
     Ok(Maps { labels, lines, names, values })

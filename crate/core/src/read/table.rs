@@ -101,6 +101,19 @@ pub(super) fn number(field: &str) -> Option<f64> {
     field.parse().ok().filter(|value: &f64| plain && value.is_finite())
 }
 
+/// Sizes that numbers may have: their squares and products stay far inside the range of `f64`.
+const SIZES: core::ops::RangeInclusive<f64> = 1e-100..=1e100;
+
+/// The number that a field must hold, or the error at its place.
+pub(super) fn expect_number(field: &str, place: impl FnOnce() -> Place) -> Result<f64, Error> {
+    let code = match number(field) {
+        Some(value) if value == 0.0 || SIZES.contains(&value.abs()) => return Ok(value),
+        Some(_) => Code::NumberRange,
+        None => Code::NumberExpected,
+    };
+    Err(Finding::new(code).at(place()).with("found", field).into())
+}
+
 /// Whether a field says that there is no value.
 pub(super) fn is_missing(field: &str) -> bool {
     ["", "n/a", "na", "nan", "-"].iter().any(|word| field.eq_ignore_ascii_case(word))

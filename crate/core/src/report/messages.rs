@@ -40,6 +40,11 @@ pub fn message(finding: &Finding) -> String {
             place.and_then(|p| p.column).unwrap_or(1),
             value("found")
         ),
+        Code::NumberRange => format!(
+            "Line {line}, column {} of the {input}: “{}” is too large or too small; numbers from 1e-100 to 1e100 are read.",
+            place.and_then(|p| p.column).unwrap_or(1),
+            value("found")
+        ),
         Code::LabelDuplicate => format!(
             "The label “{}” stands twice in the {input}: in lines {} and {line}.",
             value("label"),
@@ -148,6 +153,7 @@ pub fn hint(code: Code) -> &'static str {
         Code::NumberExpected => {
             "Correct the field, or write n/a where there is no value. Decimals are written with a point."
         }
+        Code::NumberRange => "Correct the field, or scale the whole table.",
         Code::LabelDuplicate => "Rename or remove one of the two lines.",
         Code::LabelsUnmatched => {
             "Use the same labels in both tables (upper and lower case do not matter), or standard 10-10 names without a table of electrodes."
