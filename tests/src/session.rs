@@ -122,6 +122,12 @@ impl Session {
         std::fs::write(file, bytes).map_err(|why| format!("{}: {why}", file.display()))
     }
 
+    /// Goes into a frame of the document: what follows happens there.
+    pub fn enter_frame(&self, selector: &str) -> Outcome<()> {
+        let frame = self.find(selector)?.argument();
+        self.post("/frame", &json!({ "id": frame })).map(|_| ())
+    }
+
     /// Sets the size of the window in CSS pixels.
     pub fn resize(&self, width: u32, height: u32) -> Outcome<()> {
         self.post("/window/rect", &json!({ "width": width, "height": height })).map(|_| ())

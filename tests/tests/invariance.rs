@@ -1,5 +1,5 @@
 //! What must not matter, and what must matter in a known way.
-use inward_core::report::{DipoleReport, FittedMap};
+use inward_core::report::{EquivalentDipole, FittedMap};
 use inward_core::{MapReport, Report, Request, Settings, Vec3, analyse};
 use inward_tests::{Draw, Electrodes, Mixture, PlainSeries, example};
 
@@ -59,7 +59,7 @@ fn fitted(report: &Report) -> Vec<&FittedMap> {
 }
 
 /// Compares all maps of two reports; `expect` turns the first one's dipole into what the second one's must be.
-fn compare(a: &Report, b: &Report, expect: impl Fn(&DipoleReport) -> DipoleReport, tolerance_mm: f64) {
+fn compare(a: &Report, b: &Report, expect: impl Fn(&EquivalentDipole) -> EquivalentDipole, tolerance_mm: f64) {
     let (a, b) = (fitted(a), fitted(b));
     assert_eq!(a.len(), b.len());
     for (a, b) in a.into_iter().zip(b) {
@@ -82,7 +82,7 @@ fn a_turned_and_moved_head_gives_the_turned_and_moved_dipole() {
         let shift = Vec3::new(11.0, -30.0, 7.0);
         let turned: Vec<Vec3> = sample.positions.iter().map(|&p| turn(p) + shift).collect();
         let report = run(&sample.set.table(&turned), &sample.maps());
-        let expect = |d: &DipoleReport| DipoleReport {
+        let expect = |d: &EquivalentDipole| EquivalentDipole {
             position_mm: turn(d.position_mm) + shift,
             direction: turn(d.direction),
             ..d.clone()
@@ -98,7 +98,7 @@ fn a_larger_head_scales_lengths_and_strengths() {
     for factor in [0.8, 1.2] {
         let scaled: Vec<Vec3> = sample.positions.iter().map(|&p| p * factor).collect();
         let report = run(&sample.set.table(&scaled), &sample.maps());
-        let expect = |d: &DipoleReport| DipoleReport {
+        let expect = |d: &EquivalentDipole| EquivalentDipole {
             position_mm: d.position_mm * factor,
             strength: d.strength * factor * factor,
             ..d.clone()
@@ -132,7 +132,7 @@ fn metres_centimetres_and_millimetres_mean_the_same() {
 fn a_maps_sign_turns_the_moment_alone() {
     let sample = Sample::new(32, 6);
     let report = run(&sample.table(), &sample.changed_maps(|v| -v));
-    compare(&sample.report(), &report, |d| DipoleReport { direction: d.direction * -1.0, ..d.clone() }, 1e-9);
+    compare(&sample.report(), &report, |d| EquivalentDipole { direction: d.direction * -1.0, ..d.clone() }, 1e-9);
 }
 
 #[test]
@@ -140,7 +140,7 @@ fn a_maps_size_scales_the_strength_alone() {
     let sample = Sample::new(32, 7);
     for factor in [1e-9, 0.37, 1e12] {
         let report = run(&sample.table(), &sample.changed_maps(|v| v * factor));
-        compare(&sample.report(), &report, |d| DipoleReport { strength: d.strength * factor, ..d.clone() }, 1e-5);
+        compare(&sample.report(), &report, |d| EquivalentDipole { strength: d.strength * factor, ..d.clone() }, 1e-5);
     }
 }
 

@@ -326,6 +326,54 @@ fn no_accessibility_findings(browser: Browser) {
     assert!(!page.accessibility_findings().is_empty());
 }
 
+fn no_part_of_the_page_is_wider_than_the_window(browser: Browser) {
+    let page = answered(browser);
+    for width in [1280, 760, 480] {
+        page.session().resize(width, 900).unwrap();
+        let parts = page.value(
+            "const most = document.documentElement.clientWidth;\
+             return document.documentElement.scrollWidth <= most ? [] : [...document.querySelectorAll('body *')]\
+               .filter((e) => e.getBoundingClientRect().right > most + 1).map((e) => e.tagName + '#' + e.id + '.' + e.className).slice(0, 9)",
+        );
+        page.picture(&format!("width-{width}"));
+        assert_eq!(parts, json!([]), "{width} pixels: the document scrolls sideways");
+    }
+}
+
+fn a_long_run_is_cancelled_and_the_page_goes_on(browser: Browser) {
+    let page = Page::open(browser);
+    let repeated = |line: &str| {
+        let (label, values) = line.split_once('\t').unwrap();
+        format!("{label}{}\n", format!("\t{values}").repeat(4000))
+    };
+    let many: String = maps().lines().map(repeated).collect();
+    page.drop_files(&[DroppedFile { name: "many.tsv", text: &many }]);
+    page.until("the button that cancels", |page| page.visible("#cancel"));
+    page.click("#cancel");
+    page.until("rest", |page| page.state() != "busy" && !page.visible("#cancel"));
+    page.drop_files(&[DroppedFile { name: "maps.tsv", text: &maps() }]);
+    page.until("the few maps", |page| {
+        page.state() == "answered" && page.download_report()["maps"].as_array().unwrap().len() == 4
+    });
+}
+
+fn it_works_in_a_frame_that_allows_scripts_and_downloads_alone(browser: Browser) {
+    let folder = Folder::fresh("framed");
+    Variant::delivered().write(&folder);
+    let host = folder.write(
+        "host.html",
+        "<!doctype html><html lang=en><title>host</title><iframe sandbox='allow-scripts allow-downloads' src='inward.html' width=1200 height=900></iframe>",
+    );
+    let page = Page::load(browser, &host);
+    page.session().enter_frame("iframe").unwrap();
+    page.wait_for("ready").unwrap();
+    page.drop_files(&[DroppedFile { name: "maps.tsv", text: &maps() }]);
+    page.wait_for_answer();
+    let (_, _, bytes) = page.pixels("#map-measured");
+    assert!(bytes.iter().any(|&byte| byte > 0));
+    assert_eq!(page.download_report()["maps"].as_array().unwrap().len(), 4);
+}
+
 fn caution_and_notices_are_shown(browser: Browser) {
     let page = Page::open(browser);
     let caution = page.text("#caution").to_lowercase();
@@ -358,5 +406,8 @@ in_both_browsers!(
     a_blocked_script_is_noticed,
     everything_works_by_keyboard,
     no_accessibility_findings,
+    no_part_of_the_page_is_wider_than_the_window,
+    a_long_run_is_cancelled_and_the_page_goes_on,
+    it_works_in_a_frame_that_allows_scripts_and_downloads_alone,
     caution_and_notices_are_shown,
 );
