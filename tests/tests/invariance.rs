@@ -195,13 +195,16 @@ fn the_case_of_labels_does_not_matter() {
     compare(&alone(&sample.maps()), &alone(&lower), Clone::clone, 1e-12);
 }
 
+/// A table written in another way.
+type Change = fn(&str) -> String;
+
 #[test]
 fn delimiters_line_ends_and_headers_do_not_matter() {
     let (electrodes, maps) = (example("listening_electrodes.tsv"), example("listening_maps.tsv"));
     // Names without blanks, so that blanks can part the columns.
     let maps = maps.replace("left tap", "left").replace("both ears", "both");
     let expected = run(&electrodes, &maps);
-    let changes: [(&str, fn(&str) -> String); 9] = [
+    let changes: [(&str, Change); 9] = [
         ("comma", |text| text.replace('\t', ",")),
         ("semicolon", |text| text.replace('\t', ";")),
         ("blanks", |text| text.replace('\t', "   ")),
