@@ -100,7 +100,11 @@ impl Tools {
         let missing = tools.missing(workspace)?;
         if !missing.is_empty() {
             let hint = if install { "" } else { "\n`cargo xtask test --install` installs what it may." };
-            bail!("missing on this machine:\n{}{hint}", missing.join("\n"));
+            bail!(
+                "missing on this machine:\n{}\nA program elsewhere is named by INWARD_NODE, INWARD_NPM, INWARD_CHROMIUM, \
+                 INWARD_CHROMEDRIVER, INWARD_FIREFOX, INWARD_GECKODRIVER.{hint}",
+                missing.join("\n")
+            );
         }
         for (name, path) in tools.environment() {
             println!("{name}={}", path.display());
