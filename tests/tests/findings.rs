@@ -76,6 +76,8 @@ fn errors() -> Vec<(&'static str, ErrorReport)> {
         ("number-expected", error(Some(&e), &with_line(&m, 4, |line| line.replacen("2.201", "1e999", 1)), plain())),
         ("number-expected", error(Some(&e), &with_line(&m, 4, |line| line.replacen("2.201", "inf", 1)), plain())),
         ("number-expected", error(Some(&with_line(&e, 4, |line| line.replacen("85.7", "8S.7", 1))), &m, plain())),
+        ("number-range", error(Some(&e), &with_line(&m, 4, |line| line.replacen("2.201", "1e101", 1)), plain())),
+        ("number-range", error(Some(&e), &with_line(&m, 4, |line| line.replacen("2.201", "-1e-101", 1)), plain())),
         ("label-duplicate", error(Some(&e), &with_line(&m, 4, |line| line.replacen("AF3", "fp1", 1)), plain())),
         ("label-duplicate", error(Some(&with_line(&e, 4, |line| line.replacen("AF3", "Fp1", 1))), &m, plain())),
         ("labels-unmatched", error(Some(&e), "Q1\t3\nQ2\t4\n", plain())),

@@ -348,3 +348,48 @@ fn the_numbers_of_a_dipole_agree_with_each_other() {
         assert_eq!(d.at_boundary, d.eccentricity > 0.98 - 1e-9);
     }
 }
+
+#[test]
+fn at_the_centre_no_site_and_no_radial_share_are_named() {
+    // A potential that is linear over the scalp belongs to a dipole at the centre.
+    let set = Electrodes::set(32);
+    let map: Vec<f64> = set.directions.iter().map(|e| 3.0 * e[0] - 2.0 * e[1] + 5.0 * e[2]).collect();
+    let positions: Vec<Vec3> = set.directions.iter().map(|&e| e * 90.0).collect();
+    let report = run(&set.table(&positions), &set.maps(&[("m", &map)]));
+    let d = &fitted(&report)[0].dipole;
+    assert!(d.canonical_mm.norm() < 1e-3, "{d:?}");
+    assert_eq!((d.nearest_site, d.radial_share, d.side), (None, None, "midline"));
+    let direction = Vec3::new(3.0, -2.0, 5.0);
+    assert!((d.direction - direction * (1.0 / direction.norm())).norm() < 1e-6, "{d:?}");
+}
+
+/// Site radially above, side and depth of dipoles put under known sites.
+#[test]
+fn the_nearest_site_is_the_one_radially_above() {
+    let set = Electrodes::set(71);
+    let series = PlainSeries::standard();
+    let positions: Vec<Vec3> = set.directions.iter().map(|&e| e * 88.0).collect();
+    let sites = ["Fp1", "Cz", "CP3", "T8", "Oz", "F4", "P7", "FT8"];
+    let maps: Vec<Vec<f64>> = sites
+        .iter()
+        .map(|site| {
+            let at = set.directions[set.labels.iter().position(|label| label == site).unwrap()];
+            let rows = series.lead(at * (60.0 / 88.0), &set.directions, 1e-14);
+            rows.iter().map(|row| row.dot(Vec3::new(3.0, 5.0, 4.0))).collect()
+        })
+        .collect();
+    let columns: Vec<(&str, &[f64])> = sites.into_iter().zip(maps.iter().map(Vec::as_slice)).collect();
+    let report = run(&set.table(&positions), &set.maps(&columns));
+    for map in fitted(&report) {
+        let d = &map.dipole;
+        assert_eq!(d.nearest_site, Some(map.name.as_str()));
+        let side = match map.name.as_str() {
+            "Cz" | "Oz" => "midline",
+            "Fp1" | "CP3" | "P7" => "left",
+            _ => "right",
+        };
+        assert_eq!(d.side, side, "{}", map.name);
+        assert!((d.depth_mm - 21.0).abs() < 1e-3, "{}: {}", map.name, d.depth_mm);
+        assert!((d.strength - 50f64.sqrt()).abs() < 1e-4, "{}: {}", map.name, d.strength);
+    }
+}
