@@ -152,6 +152,19 @@ impl Page {
         self.session.chord(CONTROL, 'v').unwrap();
     }
 
+    /// Text on the clipboard, found by pasting it into a field of its own.
+    pub fn clipboard(&self) -> String {
+        let field = "\
+            const field = document.createElement('textarea');\
+            field.id = 'pasted-here';\
+            document.body.append(field); field.focus();";
+        self.value(field);
+        self.session.chord(CONTROL, 'v').unwrap();
+        let text =
+            self.value("const field = document.querySelector('#pasted-here'); field.remove(); return field.value");
+        text.as_str().unwrap_or_default().into()
+    }
+
     /// Picks a file in a file field.
     pub fn pick(&self, selector: &str, file: &Path) {
         self.session.type_keys(&self.find(selector), &file.display().to_string()).unwrap();

@@ -137,16 +137,11 @@ fn the_table_and_its_copy_tell_the_same_numbers(browser: Browser) {
     let rows = page.value("return document.querySelectorAll('#numbers tbody tr').length").as_u64().unwrap();
     assert!(rows >= 8, "{rows} rows");
     page.click("#copy-table");
-    page.until("the copy", |page| {
-        page.value(
-            "const f = document.createElement('textarea'); f.id = 'pasted-here'; document.querySelector('#pasted-here')?.remove();\
-             document.body.append(f); f.focus();",
-        );
-        page.session().chord(inward_tests::CONTROL, 'v').unwrap();
-        let copied = page.value("return document.querySelector('#pasted-here').value");
-        let lines = copied.as_str().unwrap().lines().count() as u64;
-        lines > rows - 1 && copied.as_str().unwrap().contains('\t')
-    });
+    let copied = || page.clipboard();
+    page.until("the copy", |_| copied().lines().count() as u64 >= rows);
+    let copied = copied();
+    assert!(copied.lines().all(|line| line.split('\t').count() == 3), "{copied}");
+    assert!(tells_percent(&copied.replace('\t', " "), explained(&report, 0)), "{copied}");
 }
 
 fn another_map_is_chosen(browser: Browser) {
@@ -230,6 +225,8 @@ fn a_wrong_file_leaves_the_answer(browser: Browser) {
     }
     let details = page.value("return document.querySelector('#failure-details').textContent");
     assert!(details.as_str().unwrap().contains("code: "), "{details}");
+    page.click("#copy-details");
+    page.until("the copied details", |page| json!(page.clipboard()) == details);
     assert_eq!(page.ask("return document.querySelector('#failure').getAttribute('role')", &[]), json!("alert"));
     page.paste("#maps-text", &one_map(2));
     page.wait_for_answer();
