@@ -2,7 +2,7 @@
 
 use crate::electrode::{Electrode, Label, standard_position};
 use crate::finding::{Code, Error, Finding, Place};
-use crate::head::{HEAD_RADII_MM, STANDARD_RADIUS_MM, Sphere, SphereFit, spread};
+use crate::head::{HEAD_RADII_MM, LengthUnit, STANDARD_RADIUS_MM, Sphere, SphereFit, spread};
 use crate::map::Maps;
 use crate::math::Vec3;
 use std::collections::HashMap;
@@ -79,10 +79,9 @@ pub fn place(table: Option<&[Electrode]>, maps: &Maps, wishes: &Wishes) -> Resul
     let measured = table.filter(|electrodes| electrodes.iter().any(|e| e.position.is_some()));
     let mut electrodes = match_labels(table, measured.is_some(), maps, &mut notes)?;
     let points: Vec<Vec3> = electrodes.iter().map(|e| e.position_mm).collect();
-    if electrodes.len() >= FEWEST_ELECTRODES {
-        refuse_flat(&points)?;
-    }
-    let fitted = if measured.is_some() && electrodes.len() >= FEWEST_ELECTRODES {
+    refuse_few(points.len())?;
+    refuse_flat(&points)?;
+    let fitted = if measured.is_some() {
         let (factor, sphere) = recognise_unit(&points, &mut notes)?;
         electrodes.iter_mut().for_each(|e| e.position_mm = e.position_mm * factor);
         sphere
@@ -96,13 +95,7 @@ pub fn place(table: Option<&[Electrode]>, maps: &Maps, wishes: &Wishes) -> Resul
     leave_out(&mut electrodes, &wishes.exclude, &mut notes);
 
     let used = electrodes.iter().filter(|e| e.used).count();
-    if used < FEWEST_ELECTRODES {
-        return Err(Finding::new(Code::ElectrodesTooFew)
-            .at(Place::input("maps"))
-            .with("found", used)
-            .with("fewest", FEWEST_ELECTRODES)
-            .into());
-    }
+    refuse_few(used)?;
     let usable: Vec<Vec3> = electrodes.iter().filter(|e| e.used).map(|e| e.position_mm).collect();
     refuse_flat(&usable)?;
     if used < FEW_ELECTRODES {
@@ -179,6 +172,17 @@ fn match_labels(
     Ok(placed)
 }
 
+fn refuse_few(found: usize) -> Result<(), Error> {
+    if found >= FEWEST_ELECTRODES {
+        return Ok(());
+    }
+    Err(Finding::new(Code::ElectrodesTooFew)
+        .at(Place::input("maps"))
+        .with("found", found)
+        .with("fewest", FEWEST_ELECTRODES)
+        .into())
+}
+
 fn refuse_flat(points: &[Vec3]) -> Result<(), Error> {
     let [least, middle, most] = spread(points).values;
     let code = if most <= 0.0 {
@@ -203,18 +207,16 @@ fn recognise_unit(points: &[Vec3], notes: &mut Vec<Finding>) -> Result<(f64, Sph
         })
     };
     let sphere = Sphere::fit(points).ok_or_else(|| unrecognised(None))?.sphere;
-    if (sphere.radius - 1.0).abs() <= 0.05 && sphere.centre.norm() <= 0.05 {
+    if sphere.is_unit() {
         notes.push(Finding::new(Code::UnitSphereScaled).with("radius_mm", STANDARD_RADIUS_MM));
         return Ok((STANDARD_RADIUS_MM, Sphere { centre: Vec3::ZERO, radius: STANDARD_RADIUS_MM }));
     }
-    let (unit, factor) = [("m", 1000.0), ("cm", 10.0), ("mm", 1.0)]
-        .into_iter()
-        .find(|(_, factor)| HEAD_RADII_MM.contains(&(sphere.radius * factor)))
-        .ok_or_else(|| unrecognised(Some(sphere.radius)))?;
+    let unit = LengthUnit::of_head(sphere.radius).ok_or_else(|| unrecognised(Some(sphere.radius)))?;
+    let factor = unit.millimetres();
     notes.push(
         Finding::new(Code::UnitRecognised)
             .at(Place::input("electrodes"))
-            .with("unit", unit)
+            .with("unit", unit.symbol())
             .with("radius_mm", sphere.radius * factor),
     );
     Ok((factor, Sphere { centre: sphere.centre * factor, radius: sphere.radius * factor }))

@@ -1,8 +1,10 @@
 //! The head: a sphere fitted to the electrodes and the concentric shells inside it.
 
+mod length;
 mod shells;
 mod sphere;
 
+pub use length::LengthUnit;
 pub use shells::{Shell, ShellSpec, Shells, Tissue};
 pub(crate) use sphere::spread;
 pub use sphere::{Sphere, SphereFit};

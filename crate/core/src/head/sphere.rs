@@ -64,6 +64,11 @@ impl Sphere {
         Some(Self { centre, radius }.deviations(points))
     }
 
+    /// Whether it is about the origin with radius 1, to 5 %: directions rather than positions.
+    pub fn is_unit(&self) -> bool {
+        (self.radius - 1.0).abs() <= 0.05 && self.centre.norm() <= 0.05
+    }
+
     /// This sphere with the deviations of the points from it.
     pub fn deviations(self, points: &[Vec3]) -> SphereFit {
         let deviations: Vec<f64> = points.iter().map(|&p| (p - self.centre).norm() - self.radius).collect();

@@ -1,6 +1,6 @@
 use super::table::{LABEL_NAMES, number};
 use super::{Table, decode};
-use crate::head::Sphere;
+use crate::head::{LengthUnit, Sphere, SphereFit, spread};
 use crate::math::Vec3;
 
 /// What a table is.
@@ -13,9 +13,12 @@ pub enum Kind {
     Maps,
 }
 
-/// Points whose distances from the fitted centre differ by less than this share of the radius (rms) may be a head;
-/// measured heads stay below 0.08, values of maps far above.
-const ROUGH: f64 = 0.15;
+/// Largest rms deviation from the fitted sphere in radii: measured heads stay below 0.08, also with electrodes 12 mm off.
+const ROUGH: f64 = 0.12;
+
+/// Largest radius over the rms distance of the points from their own mean: 1 to 1.15 for heads, 1.3 for a cap on the upper
+/// third; a loose cloud of values fits a huge sphere.
+const SHALLOW: f64 = 1.35;
 
 /// Tells tables apart by their content. Electrodes have columns named x, y and z, or no other column than labels, or a
 /// column of labels and three unnamed columns of numbers that lie about on a sphere. All else is taken for maps, also
@@ -41,10 +44,16 @@ pub fn kind(bytes: &[u8]) -> Kind {
             Some(Vec3::new(numbers.next()??, numbers.next()??, numbers.next()??))
         })
         .collect();
-    match Sphere::fit(&points) {
-        Some(fit) if points.len() >= 5 && fit.rms <= ROUGH * fit.sphere.radius => Kind::Electrodes,
-        _ => Kind::Maps,
-    }
+    if is_head(&points) { Kind::Electrodes } else { Kind::Maps }
+}
+
+/// Whether points lie about on a sphere of a head's size.
+fn is_head(points: &[Vec3]) -> bool {
+    let Some(SphereFit { sphere, rms, .. }) = Sphere::fit(points) else { return false };
+    let spread = (spread(points).values.iter().sum::<f64>() / points.len() as f64).sqrt();
+    (LengthUnit::of_head(sphere.radius).is_some() || sphere.is_unit())
+        && rms <= ROUGH * sphere.radius
+        && sphere.radius <= SHALLOW * spread
 }
 
 #[cfg(test)]
