@@ -1,13 +1,13 @@
 use crate::forward::LeadField;
-use crate::math::Vec3;
-use ndarray::{Array2, ArrayView1};
+use crate::math::{Vec3, dot_f32};
+use ndarray::{Array2, ArrayView1, Axis};
 
 /// Positions over the whole region of sources with the maps that a dipole at each can make.
 #[derive(Clone, Debug)]
 pub(super) struct Grid {
     points: Vec<Vec3>,
-    /// Three orthonormal rows for each point: the average-referenced maps of its dipoles. Single precision suffices to
-    /// choose starts.
+    /// Three orthonormal rows for each point: the average-referenced maps of its dipoles, filled up with zeros to whole
+    /// registers. Single precision suffices to choose starts.
     basis: Array2<f32>,
     step: f64,
 }
@@ -22,7 +22,7 @@ impl Grid {
     pub(super) fn new(field: &LeadField) -> Self {
         let step = field.reach() / LAYERS as f64;
         let points = points(field.reach());
-        let mut basis = Array2::zeros((3 * points.len(), field.count()));
+        let mut basis = Array2::zeros((3 * points.len(), padded(field.count())));
         for (index, &point) in points.iter().enumerate() {
             for (axis, row) in orthonormal(&field.quick(point)).into_iter().enumerate() {
                 basis.row_mut(3 * index + axis).iter_mut().zip(row).for_each(|(b, v)| *b = v as f32);
@@ -40,12 +40,23 @@ impl Grid {
         self.step
     }
 
-    /// Share of each map (columns, unit length) that the best dipole at each point (rows) explains.
-    pub(super) fn explained(&self, maps: &Array2<f32>) -> Array2<f32> {
-        let products = self.basis.dot(maps);
-        Array2::from_shape_fn((self.points.len(), maps.ncols()), |(point, map)| {
-            (0..3).map(|axis| products[[3 * point + axis, map]]).map(|p| p * p).sum()
-        })
+    /// Share of each map (unit length; columns of the result) that the best dipole at each point (rows) explains.
+    pub(super) fn explained(&self, maps: &[&[f64]]) -> Array2<f32> {
+        let narrow = |map: &&[f64]| -> Vec<f32> {
+            let zeros = core::iter::repeat_n(0.0, self.basis.ncols() - map.len());
+            map.iter().map(|value| *value as f32).chain(zeros).collect()
+        };
+        let maps: Vec<Vec<f32>> = maps.iter().map(narrow).collect();
+        let mut explained = Array2::zeros((self.points.len(), maps.len()));
+        for (rows, mut out) in self.basis.axis_chunks_iter(Axis(0), 3).zip(explained.rows_mut()) {
+            for (map, share) in maps.iter().zip(&mut out) {
+                for row in rows.rows() {
+                    let product = row.as_slice().map_or(0.0, |row| dot_f32(row, map));
+                    *share += product * product;
+                }
+            }
+        }
+        explained
     }
 
     /// The best points, each away from those before it.
@@ -65,6 +76,11 @@ impl Grid {
         }
         starts
     }
+}
+
+/// The next multiple of the eight sums of [`dot_f32`].
+fn padded(count: usize) -> usize {
+    count.next_multiple_of(8)
 }
 
 /// Concentric layers of golden-angle spirals (Vogel 1979, Math Biosci 44:179–189), the outermost twice as dense: there the

@@ -11,7 +11,6 @@ mod refine;
 use crate::forward::LeadField;
 use crate::math::{Vec3, centre, dot};
 use grid::Grid;
-use ndarray::Array2;
 use objective::Objective;
 
 /// A fitted dipole, in head coordinates.
@@ -75,20 +74,16 @@ impl Fitter {
     /// The best dipoles of several maps; each result is the same as if fitted alone.
     pub fn fit_batch(&self, maps: &[&[f64]]) -> Vec<Option<Fit>> {
         let prepared: Vec<Option<(Vec<f64>, f64)>> = maps.iter().map(|map| normalise(map)).collect();
-        let mut columns = Array2::<f32>::zeros((self.field.count(), maps.len()));
-        for (mut column, map) in columns.columns_mut().into_iter().zip(&prepared) {
-            if let Some((map, _)) = map {
-                column.iter_mut().zip(map).for_each(|(value, v)| *value = *v as f32);
-            }
-        }
-        let energies = self.grid.explained(&columns);
+        let fitted: Vec<&[f64]> = prepared.iter().flatten().map(|(map, _)| &map[..]).collect();
+        let explained = self.grid.explained(&fitted);
+        let mut columns = explained.columns().into_iter();
         prepared
             .into_iter()
-            .zip(energies.columns())
-            .map(|(map, energies)| {
+            .map(|map| {
                 let (map, size) = map?;
+                let explained = columns.next()?;
                 let mut objective = Objective::new(&self.field, map);
-                let starts = self.grid.starts(energies, STARTS);
+                let starts = self.grid.starts(explained, STARTS);
                 let best = starts
                     .into_iter()
                     .map(|start| refine::refine(&mut objective, start, self.field.reach(), self.grid.step()))
@@ -167,11 +162,10 @@ mod tests {
                 assert_eq!(fitter.fit(map), *fit);
                 assert_eq!(fit.is_none(), index == 3);
             }
-            let columns = Array2::from_shape_fn((electrodes, 9), |(i, k)| libm::sin((i * (k + 1)) as f64) as f32);
-            let energies = fitter.grid.explained(&columns);
-            for k in 0..9 {
-                let alone = fitter.grid.explained(&columns.slice(ndarray::s![.., k..=k]).to_owned());
-                assert!(alone.column(0).iter().eq(energies.column(k).iter()));
+            let maps: Vec<&[f64]> = maps.iter().map(|map| &map[..]).collect();
+            let together = fitter.grid.explained(&maps);
+            for (index, map) in maps.iter().enumerate() {
+                assert!(fitter.grid.explained(&[map]).column(0).iter().eq(together.column(index).iter()));
             }
         }
     }
