@@ -84,7 +84,6 @@ const WORDS = {
   caution: [
     "For research only. Inward is not a medical device and gives no medical advice;",
     "where a person’s care is concerned, licensed practice and local rules decide.",
-    "A low residual variance alone does not show that a map has a single source.",
   ].join(" "),
 
   "failure.details": "Details to copy",

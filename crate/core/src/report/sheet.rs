@@ -103,8 +103,11 @@ fn sentence(map: &FittedMap) -> String {
         }
         Stopped::IterationLimit => " The search ended before it reached a minimum: do not rely on this position.",
     };
-    format!("{shares} {place}{reservation}")
+    format!("{shares} {place}{reservation} {CAUTION}")
 }
+
+/// Stands beside every share.
+const CAUTION: &str = "A low residual variance alone does not show that a map has a single source.";
 
 fn rows(map: &FittedMap, head: &HeadReport, electrodes: usize) -> Vec<Row> {
     let dipole = &map.dipole;
