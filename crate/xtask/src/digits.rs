@@ -25,7 +25,9 @@ pub fn check(workspace: &Workspace) -> Result<()> {
 
 /// The first line of a tree with a numeric crate that has `std`.
 fn with_std(tree: &str) -> Option<&str> {
-    let numeric = |name: &str| matches!(name, "ndarray" | "matrixmultiply" | "libm") || name.starts_with("num-");
+    let numeric = |name: &str| {
+        matches!(name, "ndarray" | "matrixmultiply" | "libm" | "wide" | "safe_arch") || name.starts_with("num-")
+    };
     tree.lines().find(|line| {
         let features = line.split_once('[').map_or("", |(_, features)| features.trim_end_matches(']'));
         numeric(line.split(' ').next().unwrap_or_default()) && features.split(',').any(|feature| feature == "std")

@@ -1,14 +1,17 @@
 use crate::forward::LeadField;
-use crate::math::{Vec3, dot_f32};
-use ndarray::{Array2, ArrayView1, Axis};
+use crate::math::Vec3;
+use crate::math::lanes::{NarrowLanes, narrow_blocks, narrow_dot};
+use ndarray::{Array2, ArrayView1};
 
 /// Positions over the whole region of sources with the maps that a dipole at each can make.
 #[derive(Clone, Debug)]
 pub(super) struct Grid {
     points: Vec<Vec3>,
-    /// Three orthonormal rows for each point: the average-referenced maps of its dipoles, filled up with zeros to whole
-    /// registers. Single precision suffices to choose starts.
-    basis: Array2<f32>,
+    /// Three orthonormal rows for each point, one after the other: the average-referenced maps of its dipoles. Single
+    /// precision suffices to choose starts.
+    basis: Vec<NarrowLanes>,
+    /// Blocks of a row.
+    width: usize,
     step: f64,
 }
 
@@ -22,13 +25,9 @@ impl Grid {
     pub(super) fn new(field: &LeadField) -> Self {
         let step = field.reach() / LAYERS as f64;
         let points = points(field.reach());
-        let mut basis = Array2::zeros((3 * points.len(), padded(field.count())));
-        for (index, &point) in points.iter().enumerate() {
-            for (axis, row) in orthonormal(&field.quick(point)).into_iter().enumerate() {
-                basis.row_mut(3 * index + axis).iter_mut().zip(row).for_each(|(b, v)| *b = v as f32);
-            }
-        }
-        Self { points, basis, step }
+        let rows = points.iter().flat_map(|&point| orthonormal(&field.quick(point)));
+        let basis = rows.flat_map(|row| narrow_blocks(&row)).collect();
+        Self { points, basis, width: field.count().div_ceil(8), step }
     }
 
     pub(super) fn count(&self) -> usize {
@@ -42,16 +41,12 @@ impl Grid {
 
     /// Share of each map (unit length; columns of the result) that the best dipole at each point (rows) explains.
     pub(super) fn explained(&self, maps: &[&[f64]]) -> Array2<f32> {
-        let narrow = |map: &&[f64]| -> Vec<f32> {
-            let zeros = core::iter::repeat_n(0.0, self.basis.ncols() - map.len());
-            map.iter().map(|value| *value as f32).chain(zeros).collect()
-        };
-        let maps: Vec<Vec<f32>> = maps.iter().map(narrow).collect();
+        let maps: Vec<Vec<NarrowLanes>> = maps.iter().map(|map| narrow_blocks(map)).collect();
         let mut explained = Array2::zeros((self.points.len(), maps.len()));
-        for (rows, mut out) in self.basis.axis_chunks_iter(Axis(0), 3).zip(explained.rows_mut()) {
+        for (rows, mut out) in self.basis.chunks_exact(3 * self.width).zip(explained.rows_mut()) {
             for (map, share) in maps.iter().zip(&mut out) {
-                for row in rows.rows() {
-                    let product = row.as_slice().map_or(0.0, |row| dot_f32(row, map));
+                for row in rows.chunks_exact(self.width) {
+                    let product = narrow_dot(row, map);
                     *share += product * product;
                 }
             }
@@ -76,11 +71,6 @@ impl Grid {
         }
         starts
     }
-}
-
-/// The next multiple of the eight sums of [`dot_f32`].
-fn padded(count: usize) -> usize {
-    count.next_multiple_of(8)
 }
 
 /// Concentric layers of golden-angle spirals (Vogel 1979, Math Biosci 44:179–189), the outermost twice as dense: there the

@@ -82,11 +82,13 @@ impl Fitter {
             .map(|map| {
                 let (map, size) = map?;
                 let explained = columns.next()?;
-                let mut objective = Objective::new(&self.field, map);
-                let starts = self.grid.starts(explained, STARTS);
-                let best = starts
+                let mut objective = Objective::new(&self.field, &map);
+                let mut minima: Vec<Fit> = Vec::with_capacity(STARTS);
+                for start in self.grid.starts(explained, STARTS) {
+                    minima.extend(self.refine(&mut objective, start, &minima));
+                }
+                let best = minima
                     .into_iter()
-                    .map(|start| refine::refine(&mut objective, start, self.field.reach(), self.grid.step()))
                     .reduce(|best, next| if next.residual_variance < best.residual_variance { next } else { best })?;
                 Some(Fit {
                     moment: best.moment * (size / self.field.scale()),
@@ -100,15 +102,19 @@ impl Fitter {
     /// The minimum that Newton steps reach from one start, in scalp radii from the centre; for checks of the search.
     pub fn fit_from(&self, map: &[f64], start: Vec3) -> Option<Fit> {
         let (map, size) = normalise(map)?;
-        let mut objective = Objective::new(&self.field, map);
-        let fit = refine::refine(&mut objective, start, self.field.reach(), self.grid.step());
+        let mut objective = Objective::new(&self.field, &map);
+        let fit = self.refine(&mut objective, start, &[])?;
         Some(Fit { moment: fit.moment * (size / self.field.scale()), evaluations: objective.evaluations(), ..fit })
+    }
+
+    fn refine(&self, objective: &mut Objective, start: Vec3, known: &[Fit]) -> Option<Fit> {
+        refine::refine(objective, start, self.field.reach(), self.grid.step(), known)
     }
 
     /// What the best moment at a given position leaves over, as a share of the map's sum of squares.
     pub fn residual_variance_at(&self, map: &[f64], position: Vec3) -> Option<f64> {
         let (map, _) = normalise(map)?;
-        Some(Objective::new(&self.field, map).evaluate(position).residual_variance)
+        Some(Objective::new(&self.field, &map).evaluate(position).residual_variance)
     }
 
     /// The potential of a dipole in µV, average-referenced.

@@ -1,11 +1,14 @@
-use crate::forward::{LeadField, Local};
-use crate::math::{Symmetric3, Vec3, centre, dot};
+use crate::forward::{LeadField, Local, along};
+use crate::math::lanes::{Lanes, blocks, dot, sum};
+use crate::math::{Symmetric3, Vec3};
 
 /// Residual variance of one map as a function of the dipole's position.
 pub(super) struct Objective<'a> {
     field: &'a LeadField,
     /// Average-referenced, unit length.
-    map: Vec<f64>,
+    map: Vec<Lanes>,
+    /// 1 for each electrode, 0 where the last block is filled up.
+    present: Vec<Lanes>,
     evaluations: usize,
 }
 
@@ -20,8 +23,9 @@ pub(super) struct Evaluation {
 }
 
 impl<'a> Objective<'a> {
-    pub(super) fn new(field: &'a LeadField, map: Vec<f64>) -> Self {
-        Self { field, map, evaluations: 0 }
+    /// Of an average-referenced map of unit length.
+    pub(super) fn new(field: &'a LeadField, map: &[f64]) -> Self {
+        Self { field, map: blocks(map), present: blocks(&vec![1.0; map.len()]), evaluations: 0 }
     }
 
     pub(super) fn evaluations(&self) -> usize {
@@ -34,7 +38,7 @@ impl<'a> Objective<'a> {
     pub(super) fn evaluate(&mut self, position: Vec3) -> Evaluation {
         self.evaluations += 1;
         let local = self.field.local(position);
-        let columns = self.columns(&local);
+        let columns = self.centred(local.leads());
         let normal = Symmetric3::from_fn(|i, j| dot(&columns[i], &columns[j]));
         let right = Vec3([0, 1, 2].map(|i| dot(&columns[i], &self.map)));
         let Some(moment) = normal.solve(right) else {
@@ -46,8 +50,9 @@ impl<'a> Objective<'a> {
                 hessian: Symmetric3::default(),
             };
         };
-        let residual: Vec<f64> = (0..self.map.len())
-            .map(|i| self.map[i] - (columns[0][i] * moment[0] + columns[1][i] * moment[1] + columns[2][i] * moment[2]))
+        let [x, y, z] = &columns;
+        let residual: Vec<Lanes> = (0..self.map.len())
+            .map(|i| self.map[i] - (x[i] * moment[0] + y[i] * moment[1] + z[i] * moment[2]))
             .collect();
 
         let Slopes { v, w, third } = self.slopes(&local, moment, &residual);
@@ -61,84 +66,100 @@ impl<'a> Objective<'a> {
         }
     }
 
-    /// The average-referenced lead field by columns.
-    fn columns(&self, local: &Local) -> [Vec<f64>; 3] {
-        let p = local.position;
+    /// Three columns, each less its mean.
+    fn centred(&self, blocks: impl Iterator<Item = [Lanes; 3]>) -> [Vec<Lanes>; 3] {
         let mut columns = [0, 1, 2].map(|_| Vec::with_capacity(self.map.len()));
-        for (index, e) in self.field.directions().iter().enumerate() {
-            let t = local.terms(index, *e);
-            for (axis, column) in columns.iter_mut().enumerate() {
-                column.push(t.s * e[axis] + 2.0 * t.u * p[axis]);
+        for (block, present) in blocks.zip(&self.present) {
+            for (column, values) in columns.iter_mut().zip(block) {
+                column.push(values * *present);
             }
         }
         for column in &mut columns {
-            centre(column);
+            let mean = dot(column, &self.present) / self.field.count() as f64;
+            column.iter_mut().zip(&self.present).for_each(|(values, present)| *values -= *present * mean);
         }
         columns
     }
 
-    fn slopes(&self, local: &Local, m: Vec3, residual: &[f64]) -> Slopes {
+    fn slopes(&self, local: &Local, m: Vec3, residual: &[Lanes]) -> Slopes {
         let p = local.position;
         let pm = p.dot(m);
-        let mut v = [0, 1, 2].map(|_| Vec::with_capacity(residual.len()));
         // Sums over the electrodes of what stands before e eᵀ, e, and nothing, in Σ r ∂A/∂p and Σ r ∂²A/∂p² m.
-        let (mut w_ee, mut w_e, mut w_pp, mut w_one) = ([0.0; 6], Vec3::ZERO, 0.0, 0.0);
-        let (mut t_ee, mut t_e, mut t_pp, mut t_one) = ([0.0; 6], Vec3::ZERO, 0.0, 0.0);
-        for (index, (&e, &r)) in self.field.directions().iter().zip(residual).enumerate() {
-            let t = local.terms(index, e);
-            let em = e.dot(m);
-            let along_e = t.ss * em + 2.0 * t.us * pm;
-            let along_p = 2.0 * t.us * em + 4.0 * t.uu * pm;
-            for (axis, column) in v.iter_mut().enumerate() {
-                column.push(along_e * e[axis] + along_p * p[axis] + 2.0 * t.u * m[axis]);
-            }
-            let outer = [e[0] * e[0], e[0] * e[1], e[0] * e[2], e[1] * e[1], e[1] * e[2], e[2] * e[2]];
-            let (ee, third_ee) = (r * t.ss, r * (t.sss * em + 2.0 * t.uss * pm));
-            for k in 0..6 {
-                w_ee[k] += ee * outer[k];
-                t_ee[k] += third_ee * outer[k];
-            }
-            w_e += e * (r * 2.0 * t.us);
-            w_pp += r * 4.0 * t.uu;
-            w_one += r * 2.0 * t.u;
-            t_e += e * (r * (2.0 * t.uss * em + 4.0 * t.uus * pm));
-            t_pp += r * (4.0 * t.uus * em + 8.0 * t.uuu * pm);
-            t_one += r * along_p;
-        }
-        for column in &mut v {
-            centre(column);
-        }
-        let packed = |k: &[f64; 6], i: usize, j: usize| k[[[0, 1, 2], [1, 3, 4], [2, 4, 5]][i][j]];
-        let unit = |i: usize, j: usize| if i == j { 1.0 } else { 0.0 };
+        let (mut w, mut third) = (Sums::default(), Sums::default());
+        let v = self.centred(local.terms().zip(residual).map(|((e, t), &r)| {
+            let em = along(e, m);
+            let along_e = t.ss * em + t.us * (2.0 * pm);
+            let along_p = t.us * em * 2.0 + t.uu * (4.0 * pm);
+            w.add(e, r * t.ss, r * t.us * 2.0, r * t.uu * 4.0, r * t.u * 2.0);
+            third.add(
+                e,
+                r * (t.sss * em + t.uss * (2.0 * pm)),
+                r * (t.uss * em * 2.0 + t.uus * (4.0 * pm)),
+                r * (t.uus * em * 4.0 + t.uuu * (8.0 * pm)),
+                r * along_p,
+            );
+            [0, 1, 2].map(|axis| along_e * e[axis] + along_p * p[axis] + t.u * (2.0 * m[axis]))
+        }));
+        let first = w.matrix(p);
+        let (w_e, w_pp) = (w.e(), sum(w.pp));
         let both = |a: Vec3, b: Vec3, i: usize, j: usize| a[i] * b[j] + a[j] * b[i];
+        let bare = third.matrix(p);
         Slopes {
             v,
-            w: Symmetric3::from_fn(|i, j| {
-                packed(&w_ee, i, j) + both(w_e, p, i, j) + w_pp * p[i] * p[j] + w_one * unit(i, j)
-            }),
-            third: Symmetric3::from_fn(|i, j| {
-                packed(&t_ee, i, j)
-                    + both(t_e, p, i, j)
-                    + t_pp * p[i] * p[j]
-                    + both(w_e, m, i, j)
-                    + w_pp * both(p, m, i, j)
-                    + t_one * unit(i, j)
-            }),
+            w: first,
+            third: Symmetric3::from_fn(|i, j| bare.at(i, j) + both(w_e, m, i, j) + w_pp * both(p, m, i, j)),
         }
     }
 }
 
 /// vⱼ = Aⱼ m by columns; W with rows wⱼ = Aⱼᵀ r; and r·(∂²A/∂pⱼ∂pₖ m).
 struct Slopes {
-    v: [Vec<f64>; 3],
+    v: [Vec<Lanes>; 3],
     w: Symmetric3,
     third: Symmetric3,
+}
+
+/// The coefficients of Σ [α e eᵀ + β (e pᵀ + p eᵀ) + γ p pᵀ + δ 1], lane by lane.
+#[derive(Default)]
+struct Sums {
+    ee: [Lanes; 6],
+    e: [Lanes; 3],
+    pp: Lanes,
+    one: Lanes,
+}
+
+impl Sums {
+    #[inline]
+    fn add(&mut self, e: &[Lanes; 3], ee: Lanes, ep: Lanes, pp: Lanes, one: Lanes) {
+        let scaled = e.map(|component| ee * component);
+        for (k, (i, j)) in [(0, 0), (0, 1), (0, 2), (1, 1), (1, 2), (2, 2)].into_iter().enumerate() {
+            self.ee[k] += scaled[i] * e[j];
+        }
+        for axis in 0..3 {
+            self.e[axis] += ep * e[axis];
+        }
+        self.pp += pp;
+        self.one += one;
+    }
+
+    fn e(&self) -> Vec3 {
+        Vec3(self.e.map(sum))
+    }
+
+    fn matrix(&self, p: Vec3) -> Symmetric3 {
+        let (e, pp, one) = (self.e(), sum(self.pp), sum(self.one));
+        Symmetric3::from_fn(|i, j| {
+            let ee = sum(self.ee[[[0, 1, 2], [1, 3, 4], [2, 4, 5]][i][j]]);
+            ee + e[i] * p[j] + e[j] * p[i] + pp * p[i] * p[j] + if i == j { one } else { 0.0 }
+        })
+    }
 }
 
 #[cfg(test)]
 mod tests {
     use super::*;
     use crate::head::Shells;
+    use crate::math::{centre, dot};
 
     #[test]
     fn derivatives_agree_with_differences() {
@@ -154,7 +175,7 @@ mod tests {
         let length = dot(&map, &map).sqrt();
         map.iter_mut().for_each(|v| *v /= length);
         let field = LeadField::new(&Shells::standard(), 88.0, directions);
-        let mut objective = Objective::new(&field, map);
+        let mut objective = Objective::new(&field, &map);
         for p in [Vec3::ZERO, Vec3::new(0.2, -0.4, 0.3), Vec3::new(-0.5, 0.1, 0.65)] {
             let here = objective.evaluate(p);
             let h = 1e-5;

@@ -12,15 +12,17 @@ const ROUNDING: f64 = 1e-13;
 /// `reach`. On its surface, while the residual falls outwards, steps stay on the surface: with unit normal n the tangent
 /// Hessian is that of the plane plus the multiplier −g·n over the radius. The surface is left as soon as the residual
 /// falls inwards.
-pub(super) fn refine(objective: &mut Objective, start: Vec3, reach: f64, step: f64) -> Fit {
+///
+/// The search gives up, with `None`, where it comes upon a minimum that is known already.
+pub(super) fn refine(objective: &mut Objective, start: Vec3, reach: f64, step: f64, known: &[Fit]) -> Option<Fit> {
     let mut position = within(start, reach);
     let mut here = objective.evaluate(position);
     let mut trust = step;
     let mut stopped = Stopped::IterationLimit;
     for _ in 0..MOST_STEPS {
         let (gradient, hessian) = reduced(position, &here, reach);
-        let step = trust_region_step(&hessian, gradient, trust);
-        let target = within(position + step, reach);
+        let newton = trust_region_step(&hessian, gradient, trust);
+        let target = within(position + newton, reach);
         let moved = target - position;
         let predicted = -(gradient.dot(moved) + 0.5 * moved.dot(hessian.apply(moved)));
         if moved.norm() <= 1e-10 * reach {
@@ -41,6 +43,9 @@ pub(super) fn refine(objective: &mut Objective, start: Vec3, reach: f64, step: f
         }
         if better {
             (position, here) = (target, there);
+            if known.iter().any(|minimum| leads_to(minimum, position, &here, step)) {
+                return None;
+            }
         } else if predicted.abs() <= ROUNDING {
             stopped = Stopped::Converged;
             break;
@@ -49,7 +54,14 @@ pub(super) fn refine(objective: &mut Objective, start: Vec3, reach: f64, step: f
     if stopped == Stopped::Converged && pressed(position, &here, reach) {
         stopped = Stopped::Boundary;
     }
-    Fit { position, moment: here.moment, residual_variance: here.residual_variance, stopped, evaluations: 0 }
+    Some(Fit { position, moment: here.moment, residual_variance: here.residual_variance, stopped, evaluations: 0 })
+}
+
+/// Whether a position is so near a known minimum, and no better, that the search can only end there.
+fn leads_to(minimum: &Fit, position: Vec3, here: &Evaluation, step: f64) -> bool {
+    /// In grid steps: about half a millimetre.
+    const NEAR: f64 = 0.04;
+    (position - minimum.position).norm() <= NEAR * step && here.residual_variance >= minimum.residual_variance
 }
 
 /// The nearest position inside the ball.

@@ -1,7 +1,7 @@
-use super::potential::{LANES, Potential};
+use super::potential::Potential;
 use super::{MAX_ECCENTRICITY, QUICK_TOLERANCE, Series};
 use crate::head::Shells;
-use crate::math::least_squares;
+use crate::math::{Lanes, least_squares};
 
 /// A layered sphere's lead field by a few image sources.
 ///
@@ -18,11 +18,36 @@ pub struct Images {
     error_bound: f64,
 }
 
+/// An image: its place and the factors of its strengths α and β in each derivative of Φ.
+///
+/// Φ holds α/μ · 1/D and −β/μ · ln E at μp; each derivative by s brings μ, each by u brings μ² and −½.
 #[derive(Clone, Copy, Debug)]
 struct Image {
-    mu: f64,
-    alpha: f64,
-    beta: f64,
+    mu: Lanes,
+    mu2: f64,
+    s: [Lanes; 2],
+    u: [Lanes; 2],
+    us: [Lanes; 2],
+    uu: [Lanes; 2],
+    uus: [Lanes; 2],
+    uuu: [Lanes; 2],
+}
+
+impl Image {
+    fn new(mu: f64, alpha: f64, beta: f64) -> Self {
+        let factors = |factor: f64, odd: f64| [Lanes::splat(factor * odd * alpha), Lanes::splat(factor * beta)];
+        let by_u = -0.5 * mu;
+        Self {
+            mu: Lanes::splat(mu),
+            mu2: mu * mu,
+            s: factors(1.0, 1.0),
+            u: factors(by_u, 1.0),
+            us: factors(by_u * mu, 3.0),
+            uu: factors(by_u * by_u * mu, 3.0),
+            uus: factors(by_u * by_u * mu * mu, 15.0),
+            uuu: factors(by_u * by_u * by_u * mu * mu, 15.0),
+        }
+    }
 }
 
 impl Images {
@@ -58,18 +83,14 @@ impl Images {
         };
         let columns = powers.iter().map(|c| weigh(c, false)).chain(powers.iter().map(|c| weigh(c, true))).collect();
         let strengths = least_squares(columns, weigh(&gains.to_vec(), false));
-        let images: Vec<Image> =
-            (0..count).map(|j| Image { mu: places[j], alpha: strengths[j], beta: strengths[count + j] }).collect();
+        let (alphas, betas) = strengths.split_at(count);
+        let images = (0..count).map(|j| Image::new(places[j], alphas[j], betas[j])).collect();
         let lacks: Vec<f64> = gains
             .iter()
             .enumerate()
             .map(|(i, gain)| {
                 let degree = (i + 1) as f64;
-                let sum: f64 = images
-                    .iter()
-                    .zip(&powers)
-                    .map(|(image, power)| power[i] * (image.alpha + image.beta / degree))
-                    .sum();
+                let sum: f64 = (0..count).map(|j| powers[j][i] * (alphas[j] + betas[j] / degree)).sum();
                 gain - sum
             })
             .collect();
@@ -77,37 +98,31 @@ impl Images {
         Self { images, error_bound }
     }
 
-    /// Derivatives of Φ, from those of 1/D and −ln E with E = 1 − s + D; the first ones only unless `HIGHER`.
-    pub(super) fn potential<const HIGHER: bool>(&self, u: f64, s: &[f64; LANES]) -> Potential {
+    /// Derivatives of Φ, from those of a = 1/D and −ln E with E = 1/b = 1 − s + D; the first ones only unless `HIGHER`.
+    #[inline]
+    pub(super) fn potential<const HIGHER: bool>(&self, u: f64, s: Lanes) -> Potential {
         let mut sum = Potential::default();
+        let one = Lanes::ONE;
         for image in &self.images {
-            let Image { mu, alpha, beta } = *image;
-            // Φ holds α/μ · 1/D and −β/μ · ln E at μp; each derivative by s brings μ, each by u brings μ².
-            let (mu2, mu3, mu4, mu5) = (mu * mu, mu * mu * mu, mu * mu * mu * mu, mu * mu * mu * mu * mu);
-            let u = u * mu2;
-            for lane in 0..LANES {
-                let s = s[lane] * mu;
-                let d = (1.0 - 2.0 * s + u).sqrt();
-                let a = 1.0 / d;
-                let b = 1.0 / (1.0 - s + d);
-                let (a2, ab) = (a * a, a * b);
-                let a3 = a2 * a;
-                sum.s[lane] += alpha * a3 + beta * (b + ab);
-                sum.u[lane] -= 0.5 * mu * (alpha * a3 + beta * ab);
-                if !HIGHER {
-                    continue;
-                }
-                let (a5, b2, ab2) = (a3 * a2, b * b, ab * b);
-                sum.us[lane] -= 0.5 * mu2 * (alpha * 3.0 * a5 + beta * (a3 * b + ab2 + ab2 * a));
-                sum.uu[lane] += 0.25 * mu3 * (alpha * 3.0 * a5 + beta * (a3 * b + ab * ab));
-                sum.uus[lane] += 0.25
-                    * mu4
-                    * (alpha * 15.0 * a5 * a2
-                        + beta * (3.0 * a5 * b + a3 * b2 + 3.0 * a2 * ab * ab + 2.0 * (ab * ab2 + ab2 * ab * a)));
-                sum.uuu[lane] -= 0.125
-                    * mu5
-                    * (alpha * 15.0 * a5 * a2 + beta * (3.0 * a5 * b + 3.0 * a2 * ab * ab + 2.0 * ab * ab * ab));
+            let s = s * image.mu;
+            let rest = one - s;
+            let d = (rest - s + Lanes::splat(image.mu2 * u)).sqrt();
+            let (a, b) = (one / d, one / (rest + d));
+            let (a2, ab) = (a * a, a * b);
+            let a3 = a2 * a;
+            sum.s += a3 * image.s[0] + (b + ab) * image.s[1];
+            sum.u += a3 * image.u[0] + ab * image.u[1];
+            if !HIGHER {
+                continue;
             }
+            let (a5, a3b, ab2, a2b2) = (a3 * a2, a2 * ab, ab * b, ab * ab);
+            sum.us += a5 * image.us[0] + (a3b + ab2 + a2b2) * image.us[1];
+            sum.uu += a5 * image.uu[0] + (a3b + a2b2) * image.uu[1];
+            let (a7, a5b_a4b2, a3b3) = (a5 * a2, (a3b + a2b2) * a2, a2b2 * ab);
+            let both = a5b_a4b2 + a5b_a4b2 + a5b_a4b2 + a3b3 + a3b3;
+            let a2b3 = a2b2 * b;
+            sum.uus += a7 * image.uus[0] + (both + a2 * ab2 + a2b3 + a2b3) * image.uus[1];
+            sum.uuu += a7 * image.uuu[0] + both * image.uuu[1];
         }
         sum
     }

@@ -1,25 +1,30 @@
-use super::potential::{LANES, Potential};
+use super::potential::{Potential, Terms};
 use super::{Images, MAX_ECCENTRICITY, Series};
 use crate::head::Shells;
 use crate::math::Vec3;
-use ndarray::Array2;
+use crate::math::lanes::{Lanes, WIDTH, blocks};
+use ndarray::{Array2, Axis};
 
 /// The lead field of a set of electrodes on a layered sphere.
 #[derive(Clone, Debug)]
 pub struct LeadField {
     directions: Vec<Vec3>,
-    blocks: Vec<[[f64; LANES]; 3]>,
+    blocks: Vec<Block>,
     series: Series,
     images: Option<Images>,
     scale: f64,
     brain_ratio: f64,
 }
 
+/// Components x, y, z of the directions of a block of electrodes; zero where there are no more.
+pub(crate) type Block = [Lanes; 3];
+
 /// The lead field around one position: what the fit needs of it.
-#[derive(Clone, Debug, Default)]
-pub struct Local {
+#[derive(Clone, Debug)]
+pub struct Local<'a> {
     pub(crate) position: Vec3,
-    pub(super) potentials: Vec<Potential>,
+    blocks: &'a [Block],
+    potentials: Vec<Potential>,
 }
 
 impl LeadField {
@@ -42,10 +47,8 @@ impl LeadField {
         series: Series,
         images: Option<Images>,
     ) -> Self {
-        let blocks = directions
-            .chunks(LANES)
-            .map(|block| [0, 1, 2].map(|axis| core::array::from_fn(|lane| block.get(lane).map_or(0.0, |e| e[axis]))))
-            .collect();
+        let [x, y, z] = [0, 1, 2].map(|axis| blocks(&directions.iter().map(|e| e[axis]).collect::<Vec<_>>()));
+        let blocks = x.into_iter().zip(y).zip(z).map(|((x, y), z)| [x, y, z]).collect();
         // 1 nAm over 1 S/m · 1 mm² is 1 mV = 1000 µV.
         let scale = 1000.0 / (4.0 * core::f64::consts::PI * shells.specs()[0].conductivity * radius_mm * radius_mm);
         Self { directions, blocks, series, images, scale, brain_ratio: shells.brain_ratio() }
@@ -100,96 +103,76 @@ impl LeadField {
     /// Derivatives of the lead field: for each electrode the symmetric matrix ∂Lᵢ/∂pⱼ in µV per nAm and scalp radius,
     /// as rows (xx, xy, xz, yy, yz, zz).
     pub fn gradient(&self, position: Vec3) -> Array2<f64> {
-        let local = self.local(position);
         let p = position;
         let mut rows = Array2::zeros((self.count(), 6));
-        for (index, e) in self.directions.iter().enumerate() {
-            let t = local.terms(index, *e);
+        for (mut rows, (e, t)) in rows.axis_chunks_iter_mut(Axis(0), WIDTH).zip(self.local(position).terms()) {
             for (column, (i, j)) in [(0, 0), (0, 1), (0, 2), (1, 1), (1, 2), (2, 2)].into_iter().enumerate() {
-                let diagonal = if i == j { 2.0 * t.u } else { 0.0 };
-                rows[[index, column]] = self.scale
-                    * (t.ss * e[i] * e[j]
-                        + 2.0 * t.us * (e[i] * p[j] + p[i] * e[j])
-                        + 4.0 * t.uu * p[i] * p[j]
-                        + diagonal);
+                let diagonal = if i == j { t.u * 2.0 } else { Lanes::ZERO };
+                let entry = t.ss * e[i] * e[j]
+                    + t.us * 2.0 * (e[i] * p[j] + e[j] * p[i])
+                    + t.uu * (4.0 * p[i] * p[j])
+                    + diagonal;
+                rows.column_mut(column).iter_mut().zip(entry.to_array()).for_each(|(value, v)| *value = self.scale * v);
             }
         }
         rows
     }
 
     /// The lead field around a position, for the fit.
-    pub fn local(&self, position: Vec3) -> Local {
+    pub fn local(&self, position: Vec3) -> Local<'_> {
         self.local_by(position, self.images.as_ref(), 2)
     }
 
     /// By images or, without, by the series; derivatives of the lead field up to this order, 0 or 2.
-    fn local_by(&self, position: Vec3, images: Option<&Images>, order: usize) -> Local {
+    fn local_by(&self, position: Vec3, images: Option<&Images>, order: usize) -> Local<'_> {
         let u = position.dot(position);
         let terms = if images.is_some() { 0 } else { self.series.terms(u.sqrt(), order) };
-        let potentials = self
-            .blocks
-            .iter()
-            .map(|[x, y, z]| {
-                let s = core::array::from_fn(|l| x[l] * position[0] + y[l] * position[1] + z[l] * position[2]);
-                match images {
-                    Some(images) if order == 0 => images.potential::<false>(u, &s),
-                    Some(images) => images.potential::<true>(u, &s),
-                    None => self.series.potential(terms, u, &s),
-                }
-            })
-            .collect();
-        Local { position, potentials }
+        let potential = |block: &Block| {
+            let s = along(block, position);
+            match images {
+                Some(images) if order == 0 => images.potential::<false>(u, s),
+                Some(images) => images.potential::<true>(u, s),
+                None => self.series.potential(terms, u, s),
+            }
+        };
+        Local { position, blocks: &self.blocks, potentials: self.blocks.iter().map(potential).collect() }
     }
 
     fn matrix(&self, local: &Local) -> Array2<f64> {
         let mut rows = Array2::zeros((self.count(), 3));
-        for (index, e) in self.directions.iter().enumerate() {
-            let (block, lane) = (&local.potentials[index / LANES], index % LANES);
-            for axis in 0..3 {
-                rows[[index, axis]] =
-                    self.scale * (block.s[lane] * e[axis] + 2.0 * block.u[lane] * local.position[axis]);
+        for (mut rows, lead) in rows.axis_chunks_iter_mut(Axis(0), WIDTH).zip(local.leads()) {
+            for (axis, lead) in lead.into_iter().enumerate() {
+                rows.column_mut(axis).iter_mut().zip(lead.to_array()).for_each(|(value, v)| *value = self.scale * v);
             }
         }
         rows
     }
 }
 
-/// Derivatives of Φ at one electrode; those with two or more s follow from Laplace's equation
-/// 6Φᵤ + 4uΦᵤᵤ + 4sΦᵤₛ + Φₛₛ = 0.
-#[derive(Clone, Copy, Debug)]
-pub(crate) struct Terms {
-    pub s: f64,
-    pub u: f64,
-    pub ss: f64,
-    pub us: f64,
-    pub uu: f64,
-    pub sss: f64,
-    pub uss: f64,
-    pub uus: f64,
-    pub uuu: f64,
+impl Local<'_> {
+    /// The lead field on the unit sphere, 2Φᵤ p + Φₛ e, block by block.
+    pub(crate) fn leads(&self) -> impl Iterator<Item = [Lanes; 3]> {
+        let p = self.position;
+        self.blocks
+            .iter()
+            .zip(&self.potentials)
+            .map(move |(e, potential)| [0, 1, 2].map(|axis| potential.s * e[axis] + potential.u * (2.0 * p[axis])))
+    }
+
+    /// Directions and derivatives of Φ, block by block.
+    pub(crate) fn terms(&self) -> impl Iterator<Item = (&Block, Terms)> {
+        let u = self.position.dot(self.position);
+        self.blocks
+            .iter()
+            .zip(&self.potentials)
+            .map(move |(e, potential)| (e, potential.terms(u, along(e, self.position))))
+    }
 }
 
-impl Local {
-    /// Of one electrode.
-    #[inline]
-    pub(crate) fn terms(&self, index: usize, direction: Vec3) -> Terms {
-        let (block, lane) = (index / LANES, index % LANES);
-        let (u, s) = (self.position.dot(self.position), self.position.dot(direction));
-        let t = &self.potentials[block];
-        let (du, us, uu, uus, uuu) = (t.u[lane], t.us[lane], t.uu[lane], t.uus[lane], t.uuu[lane]);
-        let uss = -(10.0 * uu + 4.0 * u * uuu + 4.0 * s * uus);
-        Terms {
-            s: t.s[lane],
-            u: du,
-            ss: -(6.0 * du + 4.0 * u * uu + 4.0 * s * us),
-            us,
-            uu,
-            sss: -(10.0 * us + 4.0 * u * uus + 4.0 * s * uss),
-            uss,
-            uus,
-            uuu,
-        }
-    }
+/// The scalar products of a block's directions with a vector.
+#[inline]
+pub(crate) fn along(block: &Block, vector: Vec3) -> Lanes {
+    block[0] * vector[0] + block[1] * vector[1] + block[2] * vector[2]
 }
 
 #[cfg(test)]

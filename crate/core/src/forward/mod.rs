@@ -14,6 +14,7 @@ mod potential;
 mod series;
 
 pub use images::Images;
+pub(crate) use lead_field::along;
 pub use lead_field::{LeadField, Local};
 pub use series::Series;
 

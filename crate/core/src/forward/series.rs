@@ -1,5 +1,6 @@
-use super::potential::{LANES, Potential};
+use super::potential::Potential;
 use crate::head::Shells;
+use crate::math::Lanes;
 
 /// The infinite series of Legendre terms of a layered sphere.
 ///
@@ -65,30 +66,28 @@ impl Series {
     ///
     /// With Dₙ, Eₙ, Fₙ the first three derivatives of Hₙ by s, the derivative by u of each is −½ of the next one of
     /// degree n − 1, for example ∂Hₙ/∂u = −½ Dₙ₋₁; and Dₙ = u Dₙ₋₂ + (2n − 1) Hₙ₋₁, likewise Eₙ and Fₙ.
-    pub(super) fn potential(&self, terms: usize, u: f64, s: &[f64; LANES]) -> Potential {
+    pub(super) fn potential(&self, terms: usize, u: f64, s: Lanes) -> Potential {
+        let zero = Lanes::ZERO;
         let mut sum = Potential::default();
-        for lane in 0..LANES {
-            let s = s[lane];
-            // [degree n − 1, degree n − 2] of H, D, E, F; F once more for n − 3.
-            let (mut h, mut d, mut e, mut f) = ([1.0, 0.0], [0.0, 0.0], [0.0, 0.0], [0.0, 0.0]);
-            let mut f3 = 0.0;
-            for (n, &gain) in self.gains.iter().enumerate().skip(1).take(terms) {
-                let n = n as f64;
-                let odd = 2.0 * n - 1.0;
-                let next_h = (odd * s * h[0] - (n - 1.0) * u * h[1]) / n;
-                let next_d = u * d[1] + odd * h[0];
-                let next_e = u * e[1] + odd * d[0];
-                let next_f = u * f[1] + odd * e[0];
-                sum.s[lane] += gain * next_d;
-                sum.u[lane] -= 0.5 * gain * d[0];
-                sum.us[lane] -= 0.5 * gain * e[0];
-                sum.uu[lane] += 0.25 * gain * e[1];
-                sum.uus[lane] += 0.25 * gain * f[1];
-                sum.uuu[lane] -= 0.125 * gain * f3;
-                (h, d, e) = ([next_h, h[0]], [next_d, d[0]], [next_e, e[0]]);
-                f3 = f[1];
-                f = [next_f, f[0]];
-            }
+        // [degree n − 1, degree n − 2] of H, D, E, F; F once more for n − 3.
+        let (mut h, mut d, mut e, mut f) = ([Lanes::ONE, zero], [zero; 2], [zero; 2], [zero; 2]);
+        let mut f3 = zero;
+        for (n, &gain) in self.gains.iter().enumerate().skip(1).take(terms) {
+            let n = n as f64;
+            let odd = 2.0 * n - 1.0;
+            let next_h = (s * h[0] * odd - h[1] * ((n - 1.0) * u)) / n;
+            let next_d = d[1] * u + h[0] * odd;
+            let next_e = e[1] * u + d[0] * odd;
+            let next_f = f[1] * u + e[0] * odd;
+            sum.s += next_d * gain;
+            sum.u -= d[0] * (0.5 * gain);
+            sum.us -= e[0] * (0.5 * gain);
+            sum.uu += e[1] * (0.25 * gain);
+            sum.uus += f[1] * (0.25 * gain);
+            sum.uuu -= f3 * (0.125 * gain);
+            (h, d, e) = ([next_h, h[0]], [next_d, d[0]], [next_e, e[0]]);
+            f3 = f[1];
+            f = [next_f, f[0]];
         }
         sum
     }
