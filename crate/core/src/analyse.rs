@@ -3,7 +3,7 @@
 use crate::assess::{adjusted_residual_variance, degrees_of_freedom};
 use crate::electrode::{Label, nearest_site};
 use crate::finding::{Code, Error, Finding, Place};
-use crate::fit::{BATCH, Fit, Fitter, Stopped};
+use crate::fit::{BATCH, Fit, Fitter};
 use crate::forward::LeadField;
 use crate::head::Shells;
 use crate::map::{MapUnit, Maps, average_referenced};
@@ -298,7 +298,7 @@ impl Study {
                 let along: f64 = direction.dot(radial);
                 along * along
             }),
-            at_boundary: found.stopped == Stopped::Boundary,
+            at_boundary: found.at_boundary,
         }
     }
 

@@ -5,7 +5,7 @@
 //! A module imports only from those listed above it here. [`analyse()`] and [`Study`] do the whole way in one call.
 //!
 //! Every result is the same, bit for bit, natively and in WebAssembly: transcendental functions come from `libm`,
-//! sums run in a written order, and no instruction is chosen at run time.
+//! sums run in a written order, and no arithmetic depends on the processor it runs on.
 
 pub mod finding;
 pub mod math;

@@ -1,6 +1,7 @@
 use super::Label;
 use crate::math::Vec3;
 use core::f64::consts::PI;
+use std::sync::LazyLock;
 
 /// A named site of the idealised 10-10 system, on the unit sphere: x right, y front, z up.
 #[derive(Clone, Debug, PartialEq)]
@@ -74,7 +75,12 @@ const OLD_NAMES: [(&str, &str); 4] = [("t3", "T7"), ("t4", "T8"), ("t5", "P7"), 
 /// rows are eight equal arcs of the circle through the row's two ends and its middle. A second ring lies 22.5° below the
 /// first. Proportions after Jasper 1958 (EEG Clin Neurophysiol 10:371–375) and the 10-10 division of Chatrian, Lettich &
 /// Nelson 1985 (Am J EEG Technol 25:83–92).
-pub fn standard_sites() -> Vec<StandardSite> {
+pub fn standard_sites() -> &'static [StandardSite] {
+    static SITES: LazyLock<Vec<StandardSite>> = LazyLock::new(make_sites);
+    &SITES
+}
+
+fn make_sites() -> Vec<StandardSite> {
     let midline = |steps: f64| {
         let angle = steps * PI / 8.0;
         Vec3::new(0.0, libm::sin(angle), libm::cos(angle))
@@ -102,7 +108,7 @@ pub fn standard_sites() -> Vec<StandardSite> {
 pub fn standard_position(label: &Label) -> Option<Vec3> {
     let key = label.key();
     let name = OLD_NAMES.iter().find(|(old, _)| *old == key).map_or(key, |(_, new)| new.to_lowercase());
-    standard_sites().into_iter().find(|site| site.name.to_lowercase() == name).map(|site| site.direction)
+    standard_sites().iter().find(|site| site.name.eq_ignore_ascii_case(&name)).map(|site| site.direction)
 }
 
 /// The site whose direction is nearest, unless it is more than 20° away; neighbouring sites of the upper head are 16° to
@@ -110,7 +116,7 @@ pub fn standard_position(label: &Label) -> Option<Vec3> {
 pub fn nearest_site(direction: Vec3) -> Option<&'static str> {
     let unit = direction.unit()?;
     standard_sites()
-        .into_iter()
+        .iter()
         .map(|site| (site.direction.dot(unit), site.name))
         .reduce(|best, next| if next.0 > best.0 { next } else { best })
         .filter(|(cosine, _)| *cosine >= libm::cos(20.0 * PI / 180.0))

@@ -98,6 +98,7 @@ fn orthonormal(field: &Array2<f64>) -> [Vec<f64>; 3] {
         crate::math::centre(&mut column);
         column
     });
+    let sizes = columns.each_ref().map(|column| crate::math::dot(column, column).sqrt());
     for k in 0..3 {
         let (done, rest) = columns.split_at_mut(k);
         let column = &mut rest[0];
@@ -106,7 +107,9 @@ fn orthonormal(field: &Array2<f64>) -> [Vec<f64>; 3] {
             column.iter_mut().zip(other).for_each(|(v, o)| *v -= share * o);
         }
         let norm = crate::math::dot(column, column).sqrt();
-        column.iter_mut().for_each(|v| *v = if norm > 0.0 { *v / norm } else { 0.0 });
+        // What is left of a column that depends on the others is rounding.
+        let independent = norm > 1e-12 * sizes[k];
+        column.iter_mut().for_each(|v| *v = if independent { *v / norm } else { 0.0 });
     }
     columns
 }

@@ -22,10 +22,23 @@ pub struct Fit {
     pub moment: Vec3,
     /// Residual sum of squares over the sum of squares of the average-referenced map.
     pub residual_variance: f64,
+    /// Whether the position lies on the boundary of the region of sources while the residual falls outwards.
+    pub at_boundary: bool,
     /// Why the search ended.
     pub stopped: Stopped,
     /// Evaluations of the residual in all, those of the grid included.
     pub evaluations: usize,
+}
+
+impl Fit {
+    /// The one with the lower residual; of equal ones, to rounding, the one that is a minimum.
+    fn better(self, other: Self) -> Self {
+        let gain = self.residual_variance - other.residual_variance;
+        let unproven = |fit: &Self| fit.stopped == Stopped::IterationLimit;
+        let close = gain.abs() <= refine::ROUNDING && unproven(&self) != unproven(&other);
+        let other_is_better = if close { unproven(&self) } else { gain > 0.0 };
+        if other_is_better { other } else { self }
+    }
 }
 
 /// Why a search ended.
@@ -66,13 +79,20 @@ impl Fitter {
     }
 
     /// The best dipole of a map: one value in µV for each electrode, whatever its reference. `None` for a map that is the
-    /// same everywhere.
+    /// same everywhere to rounding.
+    ///
+    /// # Panics
+    /// If the map has another number of values than the lead field has electrodes.
     pub fn fit(&self, map: &[f64]) -> Option<Fit> {
         self.fit_batch(&[map]).pop().flatten()
     }
 
     /// The best dipoles of several maps; each result is the same as if fitted alone.
+    ///
+    /// # Panics
+    /// If a map has another number of values than the lead field has electrodes.
     pub fn fit_batch(&self, maps: &[&[f64]]) -> Vec<Option<Fit>> {
+        assert!(maps.iter().all(|map| map.len() == self.field.count()), "one value for each electrode");
         let prepared: Vec<Option<(Vec<f64>, f64)>> = maps.iter().map(|map| normalise(map)).collect();
         let fitted: Vec<&[f64]> = prepared.iter().flatten().map(|(map, _)| &map[..]).collect();
         let explained = self.grid.explained(&fitted);
@@ -87,9 +107,7 @@ impl Fitter {
                 for start in self.grid.starts(explained, STARTS) {
                     minima.extend(self.refine(&mut objective, start, &minima));
                 }
-                let best = minima
-                    .into_iter()
-                    .reduce(|best, next| if next.residual_variance < best.residual_variance { next } else { best })?;
+                let best = minima.into_iter().reduce(Fit::better)?;
                 Some(Fit {
                     moment: best.moment * (size / self.field.scale()),
                     evaluations: self.grid.count() + objective.evaluations(),
@@ -99,22 +117,8 @@ impl Fitter {
             .collect()
     }
 
-    /// The minimum that Newton steps reach from one start, in scalp radii from the centre; for checks of the search.
-    pub fn fit_from(&self, map: &[f64], start: Vec3) -> Option<Fit> {
-        let (map, size) = normalise(map)?;
-        let mut objective = Objective::new(&self.field, &map);
-        let fit = self.refine(&mut objective, start, &[])?;
-        Some(Fit { moment: fit.moment * (size / self.field.scale()), evaluations: objective.evaluations(), ..fit })
-    }
-
     fn refine(&self, objective: &mut Objective, start: Vec3, known: &[Fit]) -> Option<Fit> {
         refine::refine(objective, start, self.field.reach(), self.grid.step(), known)
-    }
-
-    /// What the best moment at a given position leaves over, as a share of the map's sum of squares.
-    pub fn residual_variance_at(&self, map: &[f64], position: Vec3) -> Option<f64> {
-        let (map, _) = normalise(map)?;
-        Some(Objective::new(&self.field, &map).evaluate(position).residual_variance)
     }
 
     /// The potential of a dipole in µV, average-referenced.
@@ -136,7 +140,8 @@ fn normalise(map: &[f64]) -> Option<(Vec<f64>, f64)> {
     let mut centred: Vec<f64> = map.iter().map(|v| v / largest).collect();
     centre(&mut centred);
     let length = dot(&centred, &centred).sqrt();
-    if length <= 1e-12 {
+    // Also what is not a number.
+    if length.is_nan() || length <= 1e-12 {
         return None;
     }
     centred.iter_mut().for_each(|v| *v /= length);

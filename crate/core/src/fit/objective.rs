@@ -35,21 +35,15 @@ impl<'a> Objective<'a> {
     /// With A the average-referenced lead field, m = A⁺d, r = d − A m, Aⱼ = ∂A/∂pⱼ, vⱼ = Aⱼ m, wⱼ = Aⱼᵀ r and
     /// tⱼ = Aᵀ vⱼ − wⱼ, the residual F = |r|² / 2 has
     /// ∂F/∂pⱼ = −r·vⱼ and ∂²F/∂pⱼ∂pₖ = vⱼ·vₖ − tⱼᵀ (AᵀA)⁻¹ tₖ − r·(∂²A/∂pⱼ∂pₖ m).
-    pub(super) fn evaluate(&mut self, position: Vec3) -> Evaluation {
+    ///
+    /// `None` where the three columns of A depend on each other.
+    pub(super) fn evaluate(&mut self, position: Vec3) -> Option<Evaluation> {
         self.evaluations += 1;
         let local = self.field.local(position);
         let columns = self.centred(local.leads());
         let normal = Symmetric3::from_fn(|i, j| dot(&columns[i], &columns[j]));
         let right = Vec3([0, 1, 2].map(|i| dot(&columns[i], &self.map)));
-        let Some(moment) = normal.solve(right) else {
-            // No three independent maps from here: nothing is explained, nothing pulls.
-            return Evaluation {
-                residual_variance: 1.0,
-                moment: Vec3::ZERO,
-                gradient: Vec3::ZERO,
-                hessian: Symmetric3::default(),
-            };
-        };
+        let moment = normal.solve(right)?;
         let [x, y, z] = &columns;
         let residual: Vec<Lanes> = (0..self.map.len())
             .map(|i| self.map[i] - (x[i] * moment[0] + y[i] * moment[1] + z[i] * moment[2]))
@@ -58,12 +52,12 @@ impl<'a> Objective<'a> {
         let Slopes { v, w, third } = self.slopes(&local, moment, &residual);
         let t: [Vec3; 3] = [0, 1, 2].map(|j| Vec3([0, 1, 2].map(|k| dot(&columns[k], &v[j]) - w.at(j, k))));
         let solved = t.map(|t| normal.solve(t).unwrap_or_default());
-        Evaluation {
+        Some(Evaluation {
             residual_variance: dot(&residual, &residual),
             moment,
             gradient: w.apply(moment) * -2.0,
             hessian: Symmetric3::from_fn(|j, k| 2.0 * (dot(&v[j], &v[k]) - t[j].dot(solved[k]) - third.at(j, k))),
-        }
+        })
     }
 
     /// Three columns, each less its mean.
@@ -177,12 +171,13 @@ mod tests {
         let field = LeadField::new(&Shells::standard(), 88.0, directions);
         let mut objective = Objective::new(&field, &map);
         for p in [Vec3::ZERO, Vec3::new(0.2, -0.4, 0.3), Vec3::new(-0.5, 0.1, 0.65)] {
-            let here = objective.evaluate(p);
+            let here = objective.evaluate(p).unwrap();
             let h = 1e-5;
             for j in 0..3 {
                 let mut step = [0.0; 3];
                 step[j] = h;
-                let (up, down) = (objective.evaluate(p + Vec3(step)), objective.evaluate(p - Vec3(step)));
+                let (up, down) =
+                    (objective.evaluate(p + Vec3(step)).unwrap(), objective.evaluate(p - Vec3(step)).unwrap());
                 let slope = (up.residual_variance - down.residual_variance) / (2.0 * h);
                 assert!((slope - here.gradient[j]).abs() < 1e-8, "{p:?} {j}: {slope} {}", here.gradient[j]);
                 for k in 0..3 {

@@ -6,55 +6,62 @@ use crate::math::{Symmetric3, Vec3};
 const MOST_STEPS: usize = 100;
 
 /// Decreases of residual variance below this are rounding; there the gradient tells whether a step was good.
-const ROUNDING: f64 = 1e-13;
+pub(super) const ROUNDING: f64 = 1e-13;
+
+/// Largest gradient of residual variance, per scalp radius, at a minimum; fits end four orders below.
+const STATIONARY: f64 = 1e-6;
 
 /// Newton steps within a trust region (Conn, Gould & Toint, Trust-Region Methods, 2000, §7.3), inside the ball of radius
 /// `reach`. On its surface, while the residual falls outwards, steps stay on the surface: with unit normal n the tangent
 /// Hessian is that of the plane plus the multiplier −g·n over the radius. The surface is left as soon as the residual
 /// falls inwards.
 ///
-/// The search gives up, with `None`, where it comes upon a minimum that is known already.
+/// The search gives up, with `None`, where it comes upon a minimum that is known already, or if no dipole at the start has a
+/// map of its own.
 pub(super) fn refine(objective: &mut Objective, start: Vec3, reach: f64, step: f64, known: &[Fit]) -> Option<Fit> {
     let mut position = within(start, reach);
-    let mut here = objective.evaluate(position);
+    let mut here = objective.evaluate(position)?;
     let mut trust = step;
-    let mut stopped = Stopped::IterationLimit;
+    let mut converged = false;
     for _ in 0..MOST_STEPS {
         let (gradient, hessian) = reduced(position, &here, reach);
-        let newton = trust_region_step(&hessian, gradient, trust);
-        let target = within(position + newton, reach);
+        let target = within(position + trust_region_step(&hessian, gradient, trust), reach);
         let moved = target - position;
         let predicted = -(gradient.dot(moved) + 0.5 * moved.dot(hessian.apply(moved)));
         if moved.norm() <= 1e-10 * reach {
-            stopped = Stopped::Converged;
+            converged = true;
             break;
         }
         let there = objective.evaluate(target);
-        let gained = here.residual_variance - there.residual_variance;
-        let better = if predicted.abs() > ROUNDING {
-            gained > 0.0
-        } else {
-            reduced(target, &there, reach).0.norm() < gradient.norm() && gained > -ROUNDING
-        };
-        if !better || gained < 0.25 * predicted {
+        let gained = there.map_or(f64::NEG_INFINITY, |there| here.residual_variance - there.residual_variance);
+        let rounding = predicted.abs() <= ROUNDING;
+        let better = there.filter(|there| match rounding {
+            false => gained > 0.0,
+            true => gained > -ROUNDING && reduced(target, there, reach).0.norm() < gradient.norm(),
+        });
+        if better.is_none() || gained < 0.25 * predicted {
             trust = 0.25 * moved.norm();
         } else if gained > 0.75 * predicted && moved.norm() > 0.8 * trust {
             trust = (2.0 * trust).min(reach);
         }
-        if better {
+        if let Some(there) = better {
             (position, here) = (target, there);
             if known.iter().any(|minimum| leads_to(minimum, position, &here, step)) {
                 return None;
             }
-        } else if predicted.abs() <= ROUNDING {
-            stopped = Stopped::Converged;
+        } else if rounding {
+            converged = true;
             break;
         }
     }
-    if stopped == Stopped::Converged && pressed(position, &here, reach) {
-        stopped = Stopped::Boundary;
-    }
-    Some(Fit { position, moment: here.moment, residual_variance: here.residual_variance, stopped, evaluations: 0 })
+    let at_boundary = pressed(position, &here, reach);
+    let stopped = match converged && reduced(position, &here, reach).0.norm() <= STATIONARY {
+        false => Stopped::IterationLimit,
+        true if at_boundary => Stopped::Boundary,
+        true => Stopped::Converged,
+    };
+    let Evaluation { residual_variance, moment, .. } = here;
+    Some(Fit { position, moment, residual_variance, at_boundary, stopped, evaluations: 0 })
 }
 
 /// Whether a position is so near a known minimum, and no better, that the search can only end there.
@@ -72,7 +79,7 @@ fn within(position: Vec3, reach: f64) -> Vec3 {
 
 /// Whether the position lies on the surface and the residual falls outwards.
 fn pressed(position: Vec3, here: &Evaluation, reach: f64) -> bool {
-    position.norm() >= reach * (1.0 - 1e-12) && here.gradient.dot(position) < 0.0
+    position.norm() >= reach * (1.0 - 1e-10) && here.gradient.dot(position) < 0.0
 }
 
 /// Gradient and Hessian, those along the surface where the surface holds the position.
@@ -93,33 +100,65 @@ fn reduced(position: Vec3, here: &Evaluation, reach: f64) -> (Vec3, Symmetric3) 
     (here.gradient - n * outward, tangent)
 }
 
-/// The step that minimises g·δ + δᵀHδ / 2 within |δ| ≤ radius, from the eigenvalues of H (ibid.).
+/// The step that minimises g·δ + δᵀHδ / 2 within |δ| ≤ radius, from the eigenvalues λ₀ ≤ λ₁ ≤ λ₂ of H (ibid.).
+///
+/// On the edge it solves (H + νI) δ = −g for the ν ≥ 0 above −λ₀ that gives |δ| = radius. What is searched is
+/// t = ν + λ₀ > 0, so that no λᵢ + ν = (λᵢ − λ₀) + t is lost to rounding.
 fn trust_region_step(hessian: &Symmetric3, gradient: Vec3, radius: f64) -> Vec3 {
     let eigen = hessian.eigen();
-    let slopes = eigen.vectors.map(|v| v.dot(gradient));
-    let step = |shift: f64| {
-        (0..3).fold(Vec3::ZERO, |sum, i| {
-            let curvature = eigen.values[i] + shift;
-            if slopes[i] == 0.0 { sum } else { sum - eigen.vectors[i] * (slopes[i] / curvature) }
-        })
+    let lowest = eigen.values[0];
+    let size = gradient.norm();
+    // Slopes at rounding level would turn the step by chance.
+    let slopes = eigen.vectors.map(|v| v.dot(gradient)).map(|s| if s.abs() <= 1e-14 * size { 0.0 } else { s });
+    let step = |t: f64| {
+        (0..3)
+            .filter(|&i| slopes[i] != 0.0)
+            .fold(Vec3::ZERO, |sum, i| sum - eigen.vectors[i] * (slopes[i] / (eigen.values[i] - lowest + t)))
     };
-    if eigen.values[0] > 0.0 {
-        let newton = step(0.0);
-        if newton.norm() <= radius {
-            return newton;
+    let least = lowest.max(0.0);
+    if least > 0.0 || slopes.iter().zip(eigen.values).all(|(slope, value)| *slope == 0.0 || value > lowest) {
+        let inner = step(least);
+        let room = radius * radius - inner.dot(inner);
+        if room >= 0.0 {
+            // Hard case: no slope along the direction of most negative curvature; go along it to the edge.
+            return if lowest < 0.0 { inner + eigen.vectors[0] * room.sqrt() } else { inner };
         }
     }
-    let mut low = (-eigen.values[0]).max(0.0);
-    let mut high = low + gradient.norm() / radius + f64::MIN_POSITIVE;
-    for _ in 0..60 {
+    let (mut low, mut high) = (least, least + size / radius);
+    for _ in 0..100 {
         let middle = 0.5 * (low + high);
         if step(middle).norm() > radius { low = middle } else { high = middle }
     }
-    let inner = step(high);
-    // Hard case: no slope along the direction of most negative curvature; go along it to the edge.
-    let room = radius * radius - inner.dot(inner);
-    if eigen.values[0] < 0.0 && room > 1e-6 * radius * radius {
-        return inner + eigen.vectors[0] * room.sqrt();
+    step(high)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn steps_are_finite_reach_the_edge_and_beat_their_neighbours() {
+        let value = |h: &Symmetric3, g: Vec3, d: Vec3| g.dot(d) + 0.5 * d.dot(h.apply(d));
+        let diagonal = |a: f64, b: f64, c: f64| Symmetric3::from_fn(|i, j| if i == j { [a, b, c][i] } else { 0.0 });
+        let radius = 0.1;
+        for (hessian, gradient) in [
+            (diagonal(-1.0, 1.0, 1.0), Vec3::new(1e-20, 0.05, 0.0)),
+            (diagonal(-1.0, 1.0, 1.0), Vec3::new(1e-12, 0.05, 0.0)),
+            (diagonal(-1.0, -1.0, 1.0), Vec3::new(0.0, 0.0, 0.01)),
+            (diagonal(-1.0, 2.0, 3.0), Vec3::new(0.3, 0.4, -0.2)),
+            (diagonal(1e-3, 2.0, 3.0), Vec3::new(0.3, 0.4, -0.2)),
+            (diagonal(-1.0, 1.0, 2.0), Vec3::ZERO),
+        ] {
+            let step = trust_region_step(&hessian, gradient, radius);
+            assert!(step.is_finite() && (step.norm() - radius).abs() < 1e-9, "{step:?}");
+            for k in 0..500 {
+                let (z, angle) = (1.0 - (f64::from(k) + 0.5) / 250.0, 2.4 * f64::from(k));
+                let ring = (1.0 - z * z).sqrt();
+                let other = Vec3::new(ring * libm::cos(angle), ring * libm::sin(angle), z) * radius;
+                assert!(value(&hessian, gradient, step) <= value(&hessian, gradient, other) + 1e-15);
+            }
+        }
+        let newton = trust_region_step(&diagonal(2.0, 4.0, 8.0), Vec3::new(0.02, 0.0, -0.08), radius);
+        assert!((newton - Vec3::new(-0.01, 0.0, 0.01)).norm() < 1e-16);
     }
-    inner
 }

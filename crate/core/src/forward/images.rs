@@ -11,7 +11,8 @@ use crate::math::{Lanes, least_squares};
 /// (Berg & Scherg 1994, EEG Clin Neurophysiol 90:58–64); here the places μⱼ are fixed and both strengths of each are
 /// free, so that the problem is linear and cannot stick.
 ///
-/// The error is bounded, not sampled: by Bernstein's inequality it is at most Σₙ |gₙ − approximation| n |p|ⁿ⁻¹.
+/// The error of the lead field is bounded, not sampled: with |∇Hₙ| ≤ n |p|ⁿ⁻¹ (see [`Series`]) it is at most
+/// Σₙ |gₙ − approximation| n |p|ⁿ⁻¹. Its derivatives, which only steer the search, have no bound of their own.
 #[derive(Clone, Debug)]
 pub struct Images {
     images: Vec<Image>,
@@ -64,7 +65,8 @@ impl Images {
             .find(|images| images.error_bound <= QUICK_TOLERANCE)
     }
 
-    /// Largest possible error over the largest possible value, whatever the position, moment and electrode.
+    /// Largest possible error, whatever the position, moment and place on the scalp, over the largest value on the scalp of a
+    /// radial dipole at the same position.
     pub fn error_bound(&self) -> f64 {
         self.error_bound
     }
@@ -77,12 +79,12 @@ impl Images {
     fn solve(count: usize, gains: &[f64], weights: &[f64], reach: f64) -> Self {
         let places: Vec<f64> = (0..count).map(|j| place(j, count)).collect();
         let powers: Vec<Vec<f64>> = places.iter().map(|&mu| powers(mu).take(gains.len()).collect()).collect();
-        let weigh = |column: &Vec<f64>, by_degree: bool| -> Vec<f64> {
+        let weigh = |column: &[f64], by_degree: bool| -> Vec<f64> {
             let scale = |i: usize| if by_degree { weights[i] / (i + 1) as f64 } else { weights[i] };
             column.iter().enumerate().map(|(i, value)| value * scale(i)).collect()
         };
         let columns = powers.iter().map(|c| weigh(c, false)).chain(powers.iter().map(|c| weigh(c, true))).collect();
-        let strengths = least_squares(columns, weigh(&gains.to_vec(), false));
+        let strengths = least_squares(columns, weigh(gains, false));
         let (alphas, betas) = strengths.split_at(count);
         let images = (0..count).map(|j| Image::new(places[j], alphas[j], betas[j])).collect();
         let lacks: Vec<f64> = gains
@@ -94,7 +96,14 @@ impl Images {
                 gain - sum
             })
             .collect();
-        let error_bound = distances(reach).map(|r| bound(&lacks, r) / bound(gains, r)).fold(0.0, f64::max);
+        // Both bounds grow with the distance: between two distances the lack is at most that at the farther one, the
+        // value at least that at the nearer one.
+        let at_centre = (lacks[0] / gains[0]).abs();
+        let nearer = core::iter::once(0.0).chain(distances(reach));
+        let between = nearer.zip(distances(reach)).map(|(near, far)| bound(&lacks, far) / bound(gains, near));
+        let beyond: f64 =
+            (0..count).map(|j| (alphas[j].abs() + betas[j].abs()) * tail(gains.len(), places[j] * reach)).sum();
+        let error_bound = between.fold(at_centre, f64::max) + beyond / bound(gains, reach);
         Self { images, error_bound }
     }
 
@@ -139,7 +148,16 @@ fn place(index: usize, count: usize) -> f64 {
 
 /// Distances from the centre, in scalp radii, at which errors are weighed.
 fn distances(reach: f64) -> impl Iterator<Item = f64> {
-    (1..=50).map(move |k| reach * libm::pow(f64::from(k) / 50.0, 0.5))
+    (1..=DISTANCES).map(move |k| reach * f64::from(k) / f64::from(DISTANCES))
+}
+
+/// Enough that the largest value differs by a few percent from one distance to the next.
+const DISTANCES: i32 = 300;
+
+/// Σ n xⁿ⁻¹ over all n after the first `terms`.
+fn tail(terms: usize, x: f64) -> f64 {
+    let n = terms as f64;
+    libm::pow(x, n) * (n + 1.0 - n * x) / ((1.0 - x) * (1.0 - x))
 }
 
 /// Σ |gₙ| n rⁿ⁻¹: the largest value that a lead field with these gains can take at distance r.

@@ -8,8 +8,8 @@ use crate::math::Lanes;
 /// the innermost shell to the scalp (de Munck & Peters 1993, IEEE TBME 40:1166–1174; Zhang 1995, Phys Med Biol
 /// 40:335–349). On the unit sphere a homogeneous head has gₙ = (2n + 1) / n.
 ///
-/// The terms needed at a position come from a bound of what is left out. Bernstein's inequality gives
-/// |∇Hₙ| ≤ n |p|ⁿ⁻¹, hence term n is at most fₙ (2n + 1) |p|ⁿ⁻¹ with fₙ = n gₙ / (2n + 1).
+/// The terms needed at a position come from a bound of what is left out. The inequality n²T² + T′² ≤ n² max T² for
+/// trigonometric polynomials of degree n (Bernstein & Szegő) gives |∇Hₙ| ≤ n |p|ⁿ⁻¹, hence term n is at most fₙ (2n + 1) |p|ⁿ⁻¹ with fₙ = n gₙ / (2n + 1).
 #[derive(Clone, Debug)]
 pub struct Series {
     /// gₙ for n = 1, 2, …; index 0 is unused.
@@ -45,17 +45,22 @@ impl Series {
     /// Number of terms needed at this distance from the centre, in scalp radii, for the lead field (`order` 0) or its
     /// first or second derivatives; each derivative brings at most a factor n / |p|.
     pub fn terms(&self, distance: f64, order: usize) -> usize {
-        let bound = |n: usize| {
-            let power = n.saturating_sub(1 + order) as f64;
-            self.envelope[n] * (2 * n + 1) as f64 * libm::pow(n as f64, order as f64) * libm::pow(distance, power)
-        };
+        // |p| to the power n − 1 − order, but no negative one.
+        let mut power = 1.0;
         let mut sum = 0.0;
         for n in 1..MOST_TERMS {
-            sum += bound(n);
+            let bound = |n: usize, power: f64| {
+                let growth = (0..order).fold((2 * n + 1) as f64, |product, _| product * n as f64);
+                self.envelope[n] * growth * power
+            };
+            sum += bound(n, power);
+            if n > order {
+                power *= distance;
+            }
             // The terms after n shrink at least by this factor each.
-            let growth = (n + 2) as f64 / (n + 1) as f64;
-            let shrink = distance * libm::pow(growth, (order + 1) as f64);
-            if n > order && shrink < 1.0 && bound(n + 1) / (1.0 - shrink) <= TAIL * sum {
+            let ratio = (n + 2) as f64 / (n + 1) as f64;
+            let shrink = (0..=order).fold(distance, |product, _| product * ratio);
+            if n > order && shrink < 1.0 && bound(n + 1, power) / (1.0 - shrink) <= TAIL * sum {
                 return n;
             }
         }
@@ -102,11 +107,10 @@ fn gain(n: f64, shells: &Shells) -> f64 {
         let (inner, outer) = (&pair[0], &pair[1]);
         let slope = j * outer.ratio / outer.conductivity;
         let growing = ((n + 1.0) * v + slope) / (2.0 * n + 1.0);
-        let decaying = (n * v - slope) / (2.0 * n + 1.0);
-        let step = inner.ratio / outer.ratio;
-        let growing = growing * libm::pow(step, 2.0 * n + 1.0);
-        v = growing + decaying;
-        j = outer.conductivity / inner.ratio * (n * growing - (n + 1.0) * decaying);
+        // v = growing + decaying and slope = n growing − (n + 1) decaying; inwards the growing part changes by this much.
+        let change = growing * libm::expm1((2.0 * n + 1.0) * libm::log(inner.ratio / outer.ratio));
+        v += change;
+        j = outer.conductivity / inner.ratio * (slope + n * change);
     }
     let innermost = &specs[0];
     (2.0 * n + 1.0) / (n * v - innermost.ratio * j / innermost.conductivity)

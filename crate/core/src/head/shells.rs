@@ -47,7 +47,8 @@ impl Shells {
             )
         };
         if specs.is_empty() || specs.len() > Self::MOST {
-            return Err(invalid(specs.len(), "a head has 1 to 16 shells"));
+            let why = "a head has 1 to 16 shells";
+            return Err(Finding::new(Code::HeadInvalid).at(Place::input("settings")).with("why", why).into());
         }
         let mut inner = 0.05;
         for (index, spec) in specs.iter().enumerate() {

@@ -21,10 +21,10 @@ pub struct SphereFit {
 }
 
 impl Sphere {
-    /// The sphere that minimises Σ(|pᵢ − c| − R)²: Gauss–Newton steps from the algebraic solution, with R eliminated as
-    /// the mean distance (geometric fit; Gander, Golub & Strebel 1994, BIT 34:558–578).
+    /// The sphere that minimises Σ(|pᵢ − c| − R)², found from the algebraic solution, with R eliminated as the mean
+    /// distance (geometric fit; Gander, Golub & Strebel 1994, BIT 34:558–578).
     ///
-    /// `None` for fewer than four points or points in one plane.
+    /// `None` for fewer than four points, points in one plane, or where no minimum is found.
     pub fn fit(points: &[Vec3]) -> Option<SphereFit> {
         let spread = spread(points);
         if points.len() < 4 || spread.values[0] <= 1e-9 * spread.values[2] {
@@ -40,25 +40,7 @@ impl Sphere {
             vec![column(0), column(1), column(2), vec![1.0; local.len()]],
             local.iter().map(|p| p.dot(*p)).collect(),
         );
-        let mut centre = Vec3::new(start[0], start[1], start[2]);
-        for _ in 0..100 {
-            let arms: Vec<Vec3> = local.iter().map(|&p| p - centre).collect();
-            let distances: Vec<f64> = arms.iter().map(|a| a.norm()).collect();
-            let radius = mean(&distances);
-            let units: Vec<Vec3> = arms.iter().map(|a| a.unit().unwrap_or_default()).collect();
-            let mean_unit = centroid(&units);
-            let slopes: Vec<Vec3> = units.iter().map(|&u| u - mean_unit).collect();
-            let normal = Symmetric3::from_fn(|i, j| slopes.iter().map(|s| s[i] * s[j]).sum());
-            let right = slopes.iter().zip(&distances).fold(Vec3::ZERO, |sum, (&s, d)| sum + s * (d - radius));
-            let step = normal.solve(right)?;
-            centre += step;
-            if !centre.is_finite() {
-                return None;
-            }
-            if step.norm() <= 1e-14 {
-                break;
-            }
-        }
+        let centre = descend(&local, Vec3::new(start[0], start[1], start[2]))?;
         let centre = middle + centre * scale;
         let radius = mean(&points.iter().map(|&p| (p - centre).norm()).collect::<Vec<_>>());
         Some(Self { centre, radius }.deviations(points))
@@ -79,6 +61,41 @@ impl Sphere {
             max: deviations.iter().fold(0.0, |max: f64, d| max.max(d.abs())),
         }
     }
+}
+
+/// Gauss–Newton steps, damped while they do not lower the cost (Levenberg 1944, Q Appl Math 2:164–168); `None` unless they
+/// come to rest.
+fn descend(points: &[Vec3], start: Vec3) -> Option<Vec3> {
+    let cost = |centre: Vec3| {
+        let distances: Vec<f64> = points.iter().map(|&p| (p - centre).norm()).collect();
+        let radius = mean(&distances);
+        distances.iter().map(|d| (d - radius) * (d - radius)).sum::<f64>()
+    };
+    let mut centre = start;
+    let mut damping = 0.0;
+    for _ in 0..200 {
+        let arms: Vec<Vec3> = points.iter().map(|&p| p - centre).collect();
+        let distances: Vec<f64> = arms.iter().map(|a| a.norm()).collect();
+        let radius = mean(&distances);
+        let units: Vec<Vec3> = arms.iter().map(|a| a.unit().unwrap_or_default()).collect();
+        let mean_unit = centroid(&units);
+        let slopes: Vec<Vec3> = units.iter().map(|&u| u - mean_unit).collect();
+        let unit = |i: usize, j: usize| if i == j { damping } else { 0.0 };
+        let normal = Symmetric3::from_fn(|i, j| slopes.iter().map(|s| s[i] * s[j]).sum::<f64>() + unit(i, j));
+        let right = slopes.iter().zip(&distances).fold(Vec3::ZERO, |sum, (&s, d)| sum + s * (d - radius));
+        let step = normal.solve(right)?;
+        if step.norm() <= 1e-13 * (1.0 + centre.norm()) {
+            // At rest only if it is not the damping that holds it.
+            return (right.norm() <= 1e-9 * points.len() as f64).then_some(centre);
+        }
+        if cost(centre + step) <= cost(centre) {
+            centre += step;
+            damping *= 0.1;
+        } else {
+            damping = (10.0 * damping).max(1e-3 * points.len() as f64);
+        }
+    }
+    None
 }
 
 /// Mean of points.

@@ -2,6 +2,7 @@
 
 /// Scalar product Σ aᵢ bᵢ of two slices of equal length.
 pub fn dot(a: &[f64], b: &[f64]) -> f64 {
+    debug_assert_eq!(a.len(), b.len());
     let (quads_a, rest_a) = a.as_chunks::<4>();
     let (quads_b, rest_b) = b.as_chunks::<4>();
     let mut sums = [0.0; 4];

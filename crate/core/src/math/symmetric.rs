@@ -62,7 +62,10 @@ impl Symmetric3 {
 
     /// Eigenvalues and eigenvectors by cyclic Jacobi rotations (Jacobi 1846; Golub & Van Loan, Matrix Computations, §8.5).
     pub fn eigen(&self) -> Eigen {
-        let mut a = self.rows;
+        // Scaled, so that squares stay within the range of numbers.
+        let largest = self.rows.iter().flatten().fold(0.0f64, |most, value| most.max(value.abs()));
+        let scale = if largest > 0.0 && largest.is_finite() { largest } else { 1.0 };
+        let mut a = self.rows.map(|row| row.map(|value| value / scale));
         let mut v = [[1.0, 0.0, 0.0], [0.0, 1.0, 0.0], [0.0, 0.0, 1.0]];
         for _ in 0..30 {
             let off = a[0][1] * a[0][1] + a[0][2] * a[0][2] + a[1][2] * a[1][2];
@@ -91,7 +94,7 @@ impl Symmetric3 {
         }
         let mut order = [0, 1, 2];
         order.sort_by(|&i, &j| a[i][i].total_cmp(&a[j][j]));
-        Eigen { values: order.map(|i| a[i][i]), vectors: order.map(|i| Vec3::new(v[0][i], v[1][i], v[2][i])) }
+        Eigen { values: order.map(|i| a[i][i] * scale), vectors: order.map(|i| Vec3::new(v[0][i], v[1][i], v[2][i])) }
     }
 }
 

@@ -74,16 +74,17 @@ pub fn message(finding: &Finding) -> String {
         Code::ElectrodesCoplanar => "All electrodes stand in one plane, so that no sphere can be fitted.".into(),
         Code::UnitsUnrecognised => match finding.value("radius") {
             Some(_) => format!(
-                "The positions fit a sphere of radius {}, which is no head in metres, centimetres or millimetres.",
-                value("radius")
+                "The positions fit a sphere of radius {}, which is no head in metres, centimetres or millimetres; {} lies farthest from the rest.",
+                value("radius"),
+                value("label")
             ),
-            None => "The positions fit no sphere.".into(),
+            None => format!("The positions fit no sphere; {} lies farthest from the rest.", value("label")),
         },
         Code::MapsNone => "The table of maps has labels but no column of values.".into(),
         Code::MapsTooMany => {
             format!("The table holds {} maps; at most {} are read.", value("found"), value("most"))
         }
-        Code::MapConstant => format!("The map “{}” has the same value at every electrode.", value("map")),
+        Code::MapConstant => format!("The map “{}” has the same value at every electrode, to rounding.", value("map")),
         Code::MapIncomplete => {
             format!("The map “{}” has no value at {}, where other maps have one.", value("map"), value("labels"))
         }
@@ -165,7 +166,7 @@ pub fn hint(code: Code) -> &'static str {
             "Check that the three coordinates are different columns; electrodes must surround a part of the head."
         }
         Code::UnitsUnrecognised => {
-            "Give positions in metres, centimetres or millimetres (head radii from 40 to 120 mm), or on a unit sphere about the origin."
+            "Give positions in metres, centimetres or millimetres (head radii from 40 to 120 mm), or on a unit sphere about the origin; check the electrode named."
         }
         Code::MapsNone => "Add at least one column of values.",
         Code::MapsTooMany => "Split the table into several.",

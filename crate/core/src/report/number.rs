@@ -10,6 +10,16 @@ pub(super) fn percent(share: f64) -> String {
     }
 }
 
+/// The share in percent that is left of 100 % beside one written by [`percent`], with as many decimals.
+pub(super) fn percent_left(share: f64) -> String {
+    let beside = percent(share);
+    match beside.split_once('.') {
+        _ if share > 0.0 && share < 1e-5 => "over 99.999".into(),
+        Some((_, decimals)) => format!("{:.*}", decimals.len(), 100.0 * (1.0 - share)),
+        None => format!("{:.1}", 100.0 * (1.0 - share)),
+    }
+}
+
 /// Millimetres, whole: no model is better.
 pub(super) fn millimetres(mm: f64) -> String {
     plain(format!("{mm:.0}"))
@@ -25,9 +35,9 @@ pub(super) fn hundredths(value: f64) -> String {
     plain(format!("{value:.2}"))
 }
 
-/// This many significant digits, without exponent where it stays short.
+/// At least this many significant digits, without exponent where it stays short.
 pub(super) fn significant(value: f64, digits: usize) -> String {
-    if value == 0.0 || !value.is_finite() {
+    if value == 0.0 {
         return "0".into();
     }
     let scientific = format!("{value:.*e}", digits.saturating_sub(1));
@@ -56,6 +66,10 @@ mod tests {
         assert_eq!(percent(0.9721), "97.2");
         assert_eq!(percent(0.00123), "0.12");
         assert_eq!(percent(1e-9), "under 0.001");
+        assert_eq!((percent(0.0004).as_str(), percent_left(0.0004).as_str()), ("0.040", "99.960"));
+        assert_eq!((percent(0.0281).as_str(), percent_left(0.0281).as_str()), ("2.8", "97.2"));
+        assert_eq!(percent_left(1e-9), "over 99.999");
+        assert_eq!((percent(0.0).as_str(), percent_left(0.0).as_str()), ("0.0", "100.0"));
         assert_eq!(significant(12.345, 3), "12.3");
         assert_eq!(significant(-0.0012345, 3), "-0.00123");
         assert_eq!(significant(1.5e9, 3), "1.50e9");

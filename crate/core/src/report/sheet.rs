@@ -1,4 +1,4 @@
-use super::number::{hundredths, millimetres, percent, significant, tenths};
+use super::number::{hundredths, millimetres, percent, percent_left, significant, tenths};
 use super::{FittedMap, HeadReport};
 use crate::fit::Stopped;
 use crate::map::MapUnit;
@@ -82,7 +82,7 @@ fn sentence(map: &FittedMap) -> String {
     let dipole = &map.dipole;
     let shares = format!(
         "One equivalent dipole reproduces {} % of this map (residual variance {} %, {} degrees of freedom) in a spherical model.",
-        percent(map.variance_explained),
+        percent_left(map.residual_variance),
         percent(map.residual_variance),
         map.degrees_of_freedom
     );
@@ -132,7 +132,7 @@ fn rows(map: &FittedMap, head: &HeadReport, electrodes: usize) -> Vec<Row> {
         row(
             "variance_explained",
             "Variance explained",
-            percent(map.variance_explained),
+            percent_left(map.residual_variance),
             "%",
             "100 % less the residual variance.",
         ),

@@ -12,7 +12,8 @@ pub struct Contour {
 
 /// Lines of equal value of a square raster, whose rows run from the front (y = 1) to the back and whose columns from left
 /// to right: marching squares (Lorensen & Cline 1987, Comput Graph 21:163–169, in the plane) with linear interpolation,
-/// segments joined to lines. In a saddle the mean of the four corners decides.
+/// segments joined to lines. In a saddle the mean of the four corners decides. Cells with a corner that is not a number are
+/// passed over.
 pub fn contours(raster: &[f64], size: usize, levels: &[f64]) -> Vec<Contour> {
     levels.iter().flat_map(|&level| level_lines(raster, size, level)).collect()
 }
@@ -41,8 +42,11 @@ fn level_lines(raster: &[f64], size: usize, level: f64) -> Vec<Contour> {
             let (right, below, across) = (corner + 1, corner + size, corner + size + 1);
             let (top, left) = ((corner, false), (corner, true));
             let (bottom, far) = ((below, false), (right, true));
-            let case = [corner, right, across, below].map(above);
-            match case {
+            let corners = [corner, right, across, below];
+            if corners.iter().any(|&one| raster[one].is_nan()) {
+                continue;
+            }
+            match corners.map(above) {
                 [a, b, c, d] if a == b && b == c && c == d => {}
                 [a, b, c, d] if a == c && b == d => {
                     let middle = (raster[corner] + raster[right] + raster[across] + raster[below]) / 4.0;

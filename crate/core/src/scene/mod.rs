@@ -5,7 +5,10 @@ mod disc;
 mod picture;
 mod spline;
 
-pub use contour::{Contour, contours};
-pub use disc::{Disc, DiscPoint, hull};
+pub use contour::Contour;
+pub use disc::DiscPoint;
 pub use picture::{Extremes, Layer, Picture, PictureElectrode, Ring};
-pub use spline::{Spline, spline_kernel};
+pub use spline::Spline;
+
+use contour::contours;
+use disc::{Disc, hull};

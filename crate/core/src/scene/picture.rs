@@ -34,7 +34,7 @@ pub struct Picture {
 /// A map as raster and lines, reaching a little beyond the outline so that its edge can be cut smoothly.
 #[derive(Clone, Debug)]
 pub struct Layer {
-    /// Values in the map's unit; NaN well outside the outline.
+    /// Values over the limit of the picture; NaN well outside the outline.
     pub raster: Vec<f32>,
     /// Contour lines.
     pub contours: Vec<Contour>,
@@ -74,6 +74,9 @@ pub struct PictureElectrode {
 /// Rows and columns of the rasters.
 const SIZE: usize = 96;
 
+/// How far beyond the outline the maps are computed, on the disc: two pixels.
+const MARGIN: f64 = 4.0 / SIZE as f64;
+
 /// Contour lines on each side of zero.
 const LEVELS: usize = 5;
 
@@ -99,11 +102,13 @@ impl Picture {
 
         let coefficients = [measured, projected, residual].map(|map| spline.coefficients(map));
         let place = |index: usize| (2.0 * index as f64 + 1.0) / SIZE as f64 - 1.0;
-        let mut rasters = [(); 3].map(|()| vec![0.0; SIZE * SIZE]);
+        let mut rasters = [(); 3].map(|()| vec![f64::NAN; SIZE * SIZE]);
         for pixel in 0..SIZE * SIZE {
             let point = [place(pixel % SIZE), -place(pixel / SIZE)];
-            let values = spline.values(&coefficients, disc.direction(point));
-            rasters.iter_mut().zip(values).for_each(|(raster, value)| raster[pixel] = value);
+            if inside(&outline, point, MARGIN) {
+                let values = spline.values(&coefficients, disc.direction(point));
+                rasters.iter_mut().zip(values).for_each(|(raster, value)| raster[pixel] = value);
+            }
         }
 
         let largest = |map: &[f64]| map.iter().fold(0.0f64, |most, v| most.max(v.abs()));
@@ -113,14 +118,8 @@ impl Picture {
             .collect();
         let layer = |values: &[f64], raster: &[f64], stretch: f64| {
             let levels: Vec<f64> = levels.iter().map(|level| level / stretch).collect();
-            let margin = 4.0 / SIZE as f64;
-            let painted = |pixel: usize| inside(&outline, [place(pixel % SIZE), -place(pixel / SIZE)], margin);
             Layer {
-                raster: raster
-                    .iter()
-                    .enumerate()
-                    .map(|(pixel, value)| if painted(pixel) { *value as f32 } else { f32::NAN })
-                    .collect(),
+                raster: raster.iter().map(|value| (value / limit) as f32).collect(),
                 contours: contours(raster, SIZE, &levels),
                 extremes: extremes(values, &used),
             }
