@@ -25,12 +25,12 @@ const LABEL_DISTANCE = 12;
  */
 
 /**
- * @param {Float32Array} raster
+ * @param {Float32Array} raster shares of the picture's limit
  * @param {number} size
- * @param {number} limit
+ * @param {number} stretch
  * @param {Theme} theme
  */
-function imageOfRaster(raster, size, limit, theme) {
+function imageOfRaster(raster, size, stretch, theme) {
   const image = document.createElement("canvas");
   image.width = size;
   image.height = size;
@@ -39,9 +39,8 @@ function imageOfRaster(raster, size, limit, theme) {
   const pixels = pen.createImageData(size, size);
   const table = colourTable(theme, TABLE_STEPS);
   for (let at = 0; at < raster.length; at++) {
-    const value = raster[at];
-    if (Number.isNaN(value)) continue;
-    const share = limit > 0 ? Math.min(1, Math.max(-1, value / limit)) : 0;
+    if (Number.isNaN(raster[at])) continue;
+    const share = Math.min(1, Math.max(-1, raster[at] * stretch));
     const step = 3 * Math.round(((share + 1) / 2) * (TABLE_STEPS - 1));
     pixels.data[4 * at] = table[step];
     pixels.data[4 * at + 1] = table[step + 1];
@@ -71,7 +70,7 @@ export function paintDisc(canvas, content, around) {
   const { picture, role } = content;
   const edge = Math.max(...picture.rings.map((ring) => ring.radius), 0.5);
   const unit = Math.max(1, Math.min(width, height) / 2 - MARGIN) / edge;
-  const limit = role === "residual" ? picture.limit / picture.stretch : picture.limit;
+  const stretch = role === "residual" ? picture.stretch : 1;
   const pixel = 1 / unit;
 
   pen.save();
@@ -83,10 +82,10 @@ export function paintDisc(canvas, content, around) {
   pen.clip();
   pen.imageSmoothingEnabled = true;
   pen.imageSmoothingQuality = "high";
-  pen.drawImage(imageOfRaster(picture[role], picture.size, limit, around.theme), -1, -1, 2, 2);
+  pen.drawImage(imageOfRaster(picture[role], picture.size, stretch, around.theme), -1, -1, 2, 2);
   for (const line of picture.contours[role]) {
     const shift = around.theme === "light" ? -0.2 : 0.16;
-    pen.strokeStyle = cssColour(colourOfShare(line.level / limit, around.theme, shift));
+    pen.strokeStyle = cssColour(colourOfShare((line.level / picture.limit) * stretch, around.theme, shift));
     pen.lineWidth = 1.1 * pixel;
     pen.setLineDash(line.level < 0 ? [4 * pixel, 3 * pixel] : []);
     tracePoints(pen, line.points, false);

@@ -69,8 +69,14 @@ impl Study {
     /// # Errors
     /// Any of [`read_electrodes`], [`read_maps`], [`place`] and [`Shells::new`].
     pub fn open(request: &Request) -> Result<Self, Error> {
-        let maps = read_maps(request.maps)?;
-        let table = request.electrodes.map(read_electrodes).transpose()?;
+        let (maps, mut notes) = read_maps(request.maps)?;
+        let table = match request.electrodes.map(read_electrodes).transpose()? {
+            Some((table, more)) => {
+                notes.extend(more);
+                Some(table)
+            }
+            None => None,
+        };
         let settings = request.settings.clone();
         let head = settings.head.clone().unwrap_or_default();
         let shells = head.shells.map_or_else(|| Ok(Shells::standard()), Shells::new)?;
@@ -80,12 +86,13 @@ impl Study {
             radius_mm: head.radius_mm,
         };
         let placement = place(table.as_deref(), &maps, &wishes)?;
+        notes.extend(placement.notes.iter().cloned());
         let radius = placement.sphere.sphere.radius;
         let fitter = Fitter::new(LeadField::new(&shells, radius, placement.directions()));
         let inputs = request.electrodes.map(|bytes| ("electrodes", bytes)).into_iter().chain([("maps", request.maps)]);
         let mut study = Self {
             inputs: inputs.map(|(name, bytes)| Input { name, sha256: sha256(bytes) }).collect(),
-            notes: placement.notes.clone(),
+            notes,
             build: request.build,
             settings,
             maps,

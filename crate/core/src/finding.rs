@@ -130,6 +130,8 @@ codes! {
     ElectrodesCollinear = "electrodes-collinear",
     /// Error: all electrodes in one plane.
     ElectrodesCoplanar = "electrodes-coplanar",
+    /// Error: an electrode so far off the sphere that its direction means nothing.
+    ElectrodeOff = "electrode-off",
     /// Error: the positions are of no head's size in m, cm or mm.
     UnitsUnrecognised = "units-unrecognised",
     /// Error: a table of maps without a map.
@@ -144,6 +146,8 @@ codes! {
     MapIndex = "map-index",
     /// Note: x right, y front, z up was assumed.
     AxesAssumed = "axes-assumed",
+    /// Note: a first line without a usual name was taken as names of the columns.
+    HeaderAssumed = "header-assumed",
     /// Note: the length unit was recognised by the size of the head.
     UnitRecognised = "unit-recognised",
     /// Note: positions on a unit sphere were scaled to the standard head.

@@ -5,7 +5,7 @@ use crate::finding::{Code, Error, Finding, Place};
 use crate::head::{HEAD_RADII_MM, LengthUnit, STANDARD_RADIUS_MM, Sphere, SphereFit, spread};
 use crate::map::Maps;
 use crate::math::Vec3;
-use std::collections::HashMap;
+use std::collections::{HashMap, HashSet};
 
 /// Fewest electrodes that a dipole is fitted to: seven parameters of reference, position and moment, and three more.
 pub const FEWEST_ELECTRODES: usize = 10;
@@ -15,6 +15,9 @@ pub const FEW_ELECTRODES: usize = 19;
 
 /// Electrodes closer than this are at one place.
 const COINCIDENT_MM: f64 = 0.1;
+
+/// Farthest that a centre may be from the origin of the electrode table.
+const MOST_OFFSET_MM: f64 = 1000.0;
 
 /// A deviation from the sphere that brings a warning; measured heads reach 14 to 21 mm.
 const LARGE_DEVIATION_MM: f64 = 25.0;
@@ -62,42 +65,53 @@ impl Placement {
 
     /// Unit directions of the used electrodes from the centre: they are projected onto the sphere along its radius.
     pub fn directions(&self) -> Vec<Vec3> {
-        let centre = self.sphere.sphere.centre;
-        self.used().filter_map(|electrode| (electrode.position_mm - centre).unit()).collect()
+        directions(&self.electrodes, self.sphere.sphere.centre)
     }
+}
+
+fn directions(electrodes: &[Placed], centre: Vec3) -> Vec<Vec3> {
+    electrodes.iter().filter(|e| e.used).filter_map(|e| (e.position_mm - centre).unit()).collect()
 }
 
 /// Matches labels without regard to case, recognises the unit of length by the size of the head, and fits the sphere to
 /// all electrodes that have a position and a value, whether left out or not. Without a table, or with labels alone, the
-/// electrodes stand at their standard positions on a sphere of [`STANDARD_RADIUS_MM`].
+/// electrodes stand at their standard positions on a sphere of [`STANDARD_RADIUS_MM`], or of the radius wished for.
 ///
 /// # Errors
 /// `labels-unmatched`, `electrodes-too-few`, `electrodes-coincident`, `electrodes-collinear`, `electrodes-coplanar`,
-/// `units-unrecognised`, `head-invalid`.
+/// `units-unrecognised`, `electrode-off`, `head-invalid`.
 pub fn place(table: Option<&[Electrode]>, maps: &Maps, wishes: &Wishes) -> Result<Placement, Error> {
     let mut notes = Vec::new();
     let measured = table.filter(|electrodes| electrodes.iter().any(|e| e.position.is_some()));
     let mut electrodes = match_labels(table, measured.is_some(), maps, &mut notes)?;
+    refuse_few(electrodes.len())?;
     let points: Vec<Vec3> = electrodes.iter().map(|e| e.position_mm).collect();
-    refuse_few(points.len())?;
     refuse_flat(&points)?;
-    let fitted = if measured.is_some() {
-        let (factor, sphere) = recognise_unit(&points, &mut notes)?;
-        electrodes.iter_mut().for_each(|e| e.position_mm = e.position_mm * factor);
-        sphere
-    } else {
-        notes.push(Finding::new(Code::StandardPositions).with("radius_mm", STANDARD_RADIUS_MM));
-        electrodes.iter_mut().for_each(|e| e.position_mm = e.position_mm * STANDARD_RADIUS_MM);
-        Sphere { centre: Vec3::ZERO, radius: STANDARD_RADIUS_MM }
+    let frame = match measured {
+        Some(_) => recognise_unit(&electrodes, &mut notes)?,
+        None => Frame::Directions(Code::StandardPositions),
     };
+    let sphere = match frame {
+        Frame::Positions { millimetres, sphere } => {
+            electrodes.iter_mut().for_each(|e| e.position_mm = e.position_mm * millimetres);
+            wished(sphere, wishes)?
+        }
+        Frame::Directions(note) => {
+            let sphere = wished(Sphere { centre: Vec3::ZERO, radius: STANDARD_RADIUS_MM }, wishes)?;
+            notes.push(Finding::new(note).with("radius_mm", sphere.radius));
+            electrodes.iter_mut().for_each(|e| e.position_mm = sphere.centre + e.position_mm * sphere.radius);
+            sphere
+        }
+    };
+    let sphere = sphere.deviations(&electrodes.iter().map(|e| e.position_mm).collect::<Vec<_>>());
     refuse_coincident(&electrodes)?;
-    let sphere = wished(fitted, wishes, &electrodes)?;
+    refuse_far(&electrodes, sphere, wishes)?;
     leave_out(&mut electrodes, &wishes.exclude, &mut notes);
 
-    let used = electrodes.iter().filter(|e| e.used).count();
+    let directions = directions(&electrodes, sphere.sphere.centre);
+    let used = directions.len();
     refuse_few(used)?;
-    let usable: Vec<Vec3> = electrodes.iter().filter(|e| e.used).map(|e| e.position_mm).collect();
-    refuse_flat(&usable)?;
+    refuse_flat(&directions)?;
     if used < FEW_ELECTRODES {
         notes.push(Finding::new(Code::FewElectrodes).with("electrodes", used).with("degrees_of_freedom", used - 7));
     }
@@ -128,8 +142,12 @@ fn match_labels(
         table.map(|electrodes| electrodes.iter().map(|e| (e.label.key(), e)).collect());
     let mut placed = Vec::new();
     let mut unplaced = Vec::new();
+    let mut without_value: Vec<String> = Vec::new();
     for (row, label) in maps.labels.iter().enumerate() {
         if maps.values.row(row).iter().all(|value| value.is_nan()) {
+            if table.is_none() {
+                without_value.push(label.to_string());
+            }
             continue;
         }
         let electrode = match &known {
@@ -157,13 +175,9 @@ fn match_labels(
     if !unplaced.is_empty() {
         notes.push(Finding::new(Code::ValuesWithoutPosition).at(Place::input("maps")).with("labels", unplaced));
     }
-    let valued: std::collections::HashSet<String> = placed.iter().map(|e| e.label.key()).collect();
-    let without_value: Vec<String> = table
-        .unwrap_or_default()
-        .iter()
-        .filter(|e| (e.position.is_some() || !measured) && !valued.contains(&e.label.key()))
-        .map(|e| e.label.to_string())
-        .collect();
+    let valued: HashSet<String> = placed.iter().map(|e| e.label.key()).collect();
+    let unvalued = |e: &&Electrode| (e.position.is_some() || !measured) && !valued.contains(&e.label.key());
+    without_value.extend(table.unwrap_or_default().iter().filter(unvalued).map(|e| e.label.to_string()));
     if !without_value.is_empty() {
         notes.push(
             Finding::new(Code::PositionsWithoutValue).at(Place::input("electrodes")).with("labels", without_value),
@@ -197,29 +211,52 @@ fn refuse_flat(points: &[Vec3]) -> Result<(), Error> {
     Err(Finding::new(code).at(Place::input("electrodes")).into())
 }
 
-/// Millimetres per unit of length, and the fitted sphere in millimetres.
-fn recognise_unit(points: &[Vec3], notes: &mut Vec<Finding>) -> Result<(f64, Sphere), Error> {
+/// What the numbers of a table are.
+enum Frame {
+    /// Positions in a unit of so many millimetres, and the fitted sphere in millimetres.
+    Positions { millimetres: f64, sphere: Sphere },
+    /// Directions from the centre, and the note that says so.
+    Directions(Code),
+}
+
+fn recognise_unit(electrodes: &[Placed], notes: &mut Vec<Finding>) -> Result<Frame, Error> {
+    let points: Vec<Vec3> = electrodes.iter().map(|e| e.position_mm).collect();
     let unrecognised = |radius: Option<f64>| {
-        let finding = Finding::new(Code::UnitsUnrecognised).at(Place::input("electrodes"));
+        let label = farthest(electrodes);
+        let place = Place { label: Some(label.clone()), ..Place::input("electrodes") };
+        let finding = Finding::new(Code::UnitsUnrecognised).at(place).with("label", label);
         Error::from(match radius {
             Some(radius) => finding.with("radius", radius),
             None => finding,
         })
     };
-    let sphere = Sphere::fit(points).ok_or_else(|| unrecognised(None))?.sphere;
+    let sphere = Sphere::fit(&points).ok_or_else(|| unrecognised(None))?.sphere;
     if sphere.is_unit() {
-        notes.push(Finding::new(Code::UnitSphereScaled).with("radius_mm", STANDARD_RADIUS_MM));
-        return Ok((STANDARD_RADIUS_MM, Sphere { centre: Vec3::ZERO, radius: STANDARD_RADIUS_MM }));
+        return Ok(Frame::Directions(Code::UnitSphereScaled));
     }
     let unit = LengthUnit::of_head(sphere.radius).ok_or_else(|| unrecognised(Some(sphere.radius)))?;
-    let factor = unit.millimetres();
+    let millimetres = unit.millimetres();
+    let sphere = Sphere { centre: sphere.centre * millimetres, radius: sphere.radius * millimetres };
     notes.push(
         Finding::new(Code::UnitRecognised)
             .at(Place::input("electrodes"))
             .with("unit", unit.symbol())
-            .with("radius_mm", sphere.radius * factor),
+            .with("radius_mm", sphere.radius),
     );
-    Ok((factor, Sphere { centre: sphere.centre * factor, radius: sphere.radius * factor }))
+    Ok(Frame::Positions { millimetres, sphere })
+}
+
+/// The electrode whose distance from the median position differs most from the median distance.
+fn farthest(electrodes: &[Placed]) -> String {
+    let median = |mut values: Vec<f64>| {
+        values.sort_by(f64::total_cmp);
+        values.get(values.len() / 2).copied().unwrap_or(0.0)
+    };
+    let middle = Vec3([0, 1, 2].map(|axis| median(electrodes.iter().map(|e| e.position_mm[axis]).collect())));
+    let distance = |e: &Placed| (e.position_mm - middle).norm();
+    let usual = median(electrodes.iter().map(distance).collect());
+    let off = |e: &&Placed| (distance(e) - usual).abs();
+    electrodes.iter().max_by(|a, b| off(a).total_cmp(&off(b))).map(|e| e.label.to_string()).unwrap_or_default()
 }
 
 fn refuse_coincident(electrodes: &[Placed]) -> Result<(), Error> {
@@ -235,31 +272,45 @@ fn refuse_coincident(electrodes: &[Placed]) -> Result<(), Error> {
     Ok(())
 }
 
-fn wished(fitted: Sphere, wishes: &Wishes, electrodes: &[Placed]) -> Result<SphereFit, Error> {
-    let invalid =
-        |why: &str| Error::from(Finding::new(Code::HeadInvalid).at(Place::input("settings")).with("why", why));
+/// The sphere that the user wishes, else the fitted one.
+fn wished(fitted: Sphere, wishes: &Wishes) -> Result<Sphere, Error> {
     let sphere =
         Sphere { centre: wishes.centre_mm.unwrap_or(fitted.centre), radius: wishes.radius_mm.unwrap_or(fitted.radius) };
-    if !sphere.centre.is_finite() {
-        return Err(invalid("the centre is not three numbers"));
+    let why = if !(sphere.centre.is_finite() && sphere.centre.norm() <= MOST_OFFSET_MM) {
+        "the centre is more than 1 m from the origin"
+    } else if !HEAD_RADII_MM.contains(&sphere.radius) {
+        "the radius is not between 40 and 120 mm"
+    } else {
+        return Ok(sphere);
+    };
+    Err(Finding::new(Code::HeadInvalid).at(Place::input("settings")).with("why", why).into())
+}
+
+/// No electrode may be so far off the sphere that its direction from the centre means nothing.
+fn refuse_far(electrodes: &[Placed], fit: SphereFit, wishes: &Wishes) -> Result<(), Error> {
+    let Sphere { centre, radius } = fit.sphere;
+    let off = |e: &&Placed| ((e.position_mm - centre).norm() - radius).abs();
+    let Some(worst) = electrodes.iter().max_by(|a, b| off(a).total_cmp(&off(b))).filter(|e| off(e) > 0.6 * radius)
+    else {
+        return Ok(());
+    };
+    if wishes.centre_mm.is_some() || wishes.radius_mm.is_some() {
+        let why = format!("with this centre and radius the electrode {} lies far off the sphere", worst.label);
+        return Err(Finding::new(Code::HeadInvalid).at(Place::input("settings")).with("why", why).into());
     }
-    if !HEAD_RADII_MM.contains(&sphere.radius) {
-        return Err(invalid("the radius is not between 40 and 120 mm"));
-    }
-    let points: Vec<Vec3> = electrodes.iter().map(|e| e.position_mm).collect();
-    if points.iter().any(|&p| (p - sphere.centre).norm() < 0.1 * sphere.radius) {
-        return Err(invalid("an electrode lies near the centre"));
-    }
-    Ok(sphere.deviations(&points))
+    Err(Finding::new(Code::ElectrodeOff)
+        .at(Place { label: Some(worst.label.to_string()), ..Place::input("electrodes") })
+        .with("label", worst.label.as_str())
+        .with("off_mm", off(&worst))
+        .into())
 }
 
 fn leave_out(electrodes: &mut [Placed], exclude: &[Label], notes: &mut Vec<Finding>) {
-    for electrode in electrodes.iter_mut() {
-        electrode.used = !exclude.contains(&electrode.label);
-    }
+    let excluded: HashSet<String> = exclude.iter().map(Label::key).collect();
+    let known: HashSet<String> = electrodes.iter().map(|e| e.label.key()).collect();
+    electrodes.iter_mut().for_each(|e| e.used = !excluded.contains(&e.label.key()));
     let labels = |found: bool| -> Vec<String> {
-        let known = |label: &&Label| electrodes.iter().any(|e| e.label == **label) == found;
-        exclude.iter().filter(known).map(Label::to_string).collect()
+        exclude.iter().filter(|label| known.contains(&label.key()) == found).map(Label::to_string).collect()
     };
     for (code, labels) in [(Code::Excluded, labels(true)), (Code::ExcludeUnmatched, labels(false))] {
         if !labels.is_empty() {

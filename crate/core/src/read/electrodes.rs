@@ -7,7 +7,7 @@ use std::collections::HashMap;
 
 const INPUT: &str = "electrodes";
 
-/// Electrodes of a delimited table: label, x, y, z in any unit, or labels alone.
+/// Electrodes of a delimited table, label, x, y, z in any unit or labels alone, with what was assumed.
 ///
 /// Columns are found by their names (label, name, electrode, channel, site; x, y, z), without a header by their content:
 /// the first column that holds words, and the first three others. A missing position (`n/a`, empty) is allowed.
@@ -15,7 +15,7 @@ const INPUT: &str = "electrodes";
 /// # Errors
 /// Those of [`decode`] and [`Table::read`]; `table-columns`, `number-expected`, `number-range`, `label-duplicate`,
 /// `electrodes-too-many`.
-pub fn read_electrodes(bytes: &[u8]) -> Result<Vec<Electrode>, Error> {
+pub fn read_electrodes(bytes: &[u8]) -> Result<(Vec<Electrode>, Vec<Finding>), Error> {
     let table = Table::read(decode(bytes, INPUT)?, INPUT)?;
     let columns = columns(&table)?;
     if table.rows.len() > MOST_ELECTRODES {
@@ -27,7 +27,7 @@ pub fn read_electrodes(bytes: &[u8]) -> Result<Vec<Electrode>, Error> {
     }
     let electrodes: Vec<Electrode> = table.rows.iter().map(|row| electrode(row, &columns)).collect::<Result<_, _>>()?;
     refuse_duplicates(INPUT, electrodes.iter().map(|e| (&e.label, e.line)))?;
-    Ok(electrodes)
+    Ok((electrodes, table.notes(INPUT)))
 }
 
 struct Columns {

@@ -7,7 +7,7 @@ use ndarray::Array2;
 
 const INPUT: &str = "maps";
 
-/// Maps of a delimited table: a column of labels and one column of values for each map.
+/// Maps of a delimited table, a column of labels and one column of values for each map, with what was assumed.
 ///
 /// The label column is found by its name (label, name, electrode, channel, site), otherwise it is the first one that
 /// holds words. Maps are named by the header, otherwise by their number. A missing value (`n/a`, `NaN`, empty) becomes NaN.
@@ -15,7 +15,7 @@ const INPUT: &str = "maps";
 /// # Errors
 /// Those of [`decode`] and [`Table::read`]; `table-columns`, `maps-none`, `maps-too-many`, `electrodes-too-many`,
 /// `number-expected`, `number-range`, `label-duplicate`.
-pub fn read_maps(bytes: &[u8]) -> Result<Maps, Error> {
+pub fn read_maps(bytes: &[u8]) -> Result<(Maps, Vec<Finding>), Error> {
     let table = Table::read(decode(bytes, INPUT)?, INPUT)?;
     let first_line = table.header.as_ref().or(table.rows.first()).map_or(1, |row| row.line);
     let label_column = table.column(LABEL_NAMES).or_else(|| table.words()).ok_or_else(|| {
@@ -60,5 +60,5 @@ pub fn read_maps(bytes: &[u8]) -> Result<Maps, Error> {
             *value = expect_number(field, place)?;
         }
     }
-    Ok(Maps { labels, lines, names, values })
+    Ok((Maps { labels, lines, names, values }, table.notes(INPUT)))
 }

@@ -1,3 +1,5 @@
+use super::MOST_ELECTRODES;
+use crate::electrode::{Label, standard_position};
 use crate::finding::{Code, Error, Finding, Place};
 use std::borrow::Cow;
 
@@ -10,6 +12,8 @@ pub struct Table<'a> {
     pub rows: Vec<Row<'a>>,
     /// Number of columns.
     pub width: usize,
+    /// Whether the header bears no usual name and was told by its content.
+    pub header_assumed: bool,
 }
 
 /// A line of a table.
@@ -41,7 +45,7 @@ impl<'a> Table<'a> {
     /// Splits text into rows and fields. The delimiter is the first of tab, semicolon and comma that stands in every
     /// line of the first twenty outside quotes; otherwise runs of blanks. Empty lines and lines that begin with `#` or
     /// `%` are passed over. The first row is a header when it holds a usual name of
-    /// the label column, or when it holds no number and numbers follow.
+    /// the label column; else when it holds no number, numbers follow, and it does not look like a spoilt row of data.
     ///
     /// # Errors
     /// `table-ragged` at the first line with another number of fields than the first one.
@@ -56,6 +60,14 @@ impl<'a> Table<'a> {
                 !line.is_empty() && !line.starts_with(['#', '%'])
             })
             .collect();
+        // Before anything is split: a row is an electrode, or the header.
+        if lines.len() > MOST_ELECTRODES + 1 {
+            return Err(Finding::new(Code::ElectrodesTooMany)
+                .at(Place::input(input))
+                .with("found", lines.len())
+                .with("most", MOST_ELECTRODES)
+                .into());
+        }
         let delimiter = delimiter(&lines);
         let mut rows: Vec<Row> =
             lines.iter().map(|&(line, text)| Row { line, fields: split(text, delimiter) }).collect();
@@ -69,11 +81,16 @@ impl<'a> Table<'a> {
                     .into());
             }
         }
-        let header = match rows.split_first() {
-            Some((first, rest)) if is_header(first, rest) => Some(rows.remove(0)),
-            _ => None,
-        };
-        Ok(Self { header, rows, width })
+        let kind = rows.split_first().map_or(First::Data, |(first, rest)| first_row(first, rest, width));
+        let header = (kind != First::Data).then(|| rows.remove(0));
+        Ok(Self { header, rows, width, header_assumed: kind == First::Names })
+    }
+
+    /// The note that is due where the header had to be guessed.
+    pub(super) fn notes(&self, input: &'static str) -> Vec<Finding> {
+        let line = self.header.as_ref().map_or(1, |header| header.line);
+        let note = Finding::new(Code::HeaderAssumed).at(Place::line(input, line));
+        if self.header_assumed { vec![note] } else { Vec::new() }
     }
 
     /// Number of the column, from 0, whose name is one of `names`, without regard to case.
@@ -84,34 +101,43 @@ impl<'a> Table<'a> {
 
     /// Number of the column, from 0, in which most fields are words: neither a number nor missing. The first of equals.
     pub fn words(&self) -> Option<usize> {
-        let words = |column: usize| {
-            let fields = self.rows.iter().filter_map(|row| row.fields.get(column));
-            fields.filter(|field| !is_missing(field) && number(field).is_none()).count()
-        };
-        let counts: Vec<usize> = (0..self.width).map(words).collect();
-        let most = counts.iter().copied().max().filter(|&most| most > 0)?;
-        counts.iter().position(|&count| count == most)
+        words(&self.rows, self.width)
     }
 }
 
-/// The finite number that a field holds.
+fn words(rows: &[Row<'_>], width: usize) -> Option<usize> {
+    let is_word = |field: &str| !is_missing(field) && number(field).is_none();
+    let count = |column: usize| rows.iter().filter(|row| is_word(row.field(column))).count();
+    let counts: Vec<usize> = (0..width).map(count).collect();
+    let most = counts.iter().copied().max().filter(|&most| most > 0)?;
+    counts.iter().position(|&count| count == most)
+}
+
+/// The number that a field holds, of whatever size.
 pub(super) fn number(field: &str) -> Option<f64> {
     // `parse` also takes words such as "inf" and "nan".
     let plain = field.bytes().all(|b| b.is_ascii_digit() || b"+-.eE".contains(&b));
-    field.parse().ok().filter(|value: &f64| plain && value.is_finite())
+    field.parse().ok().filter(|_| plain)
 }
 
-/// Sizes that numbers may have: their squares and products stay far inside the range of `f64`.
+/// Sizes that numbers may have: their squares stay inside the range of `f64`.
 const SIZES: core::ops::RangeInclusive<f64> = 1e-100..=1e100;
 
 /// The number that a field must hold, or the error at its place.
 pub(super) fn expect_number(field: &str, place: impl FnOnce() -> Place) -> Result<f64, Error> {
     let code = match number(field) {
-        Some(value) if value == 0.0 || SIZES.contains(&value.abs()) => return Ok(value),
+        Some(value) if SIZES.contains(&value.abs()) => return Ok(value),
+        // Zero as written, not a number too small to be held.
+        Some(value) if value == 0.0 && !digits(field).any(|digit| digit != b'0') => return Ok(value),
         Some(_) => Code::NumberRange,
         None => Code::NumberExpected,
     };
     Err(Finding::new(code).at(place()).with("found", field).into())
+}
+
+/// The digits before the exponent.
+fn digits(field: &str) -> impl Iterator<Item = u8> {
+    field.bytes().take_while(|byte| !b"eE".contains(byte)).filter(u8::is_ascii_digit)
 }
 
 /// Whether a field says that there is no value.
@@ -119,10 +145,30 @@ pub(super) fn is_missing(field: &str) -> bool {
     ["", "n/a", "na", "nan", "-"].iter().any(|word| field.eq_ignore_ascii_case(word))
 }
 
-fn is_header(first: &Row<'_>, rest: &[Row<'_>]) -> bool {
+/// What a first row is.
+#[derive(Clone, Copy, PartialEq)]
+enum First {
+    /// A row like the others.
+    Data,
+    /// Names of columns, one of them usual.
+    Header,
+    /// Names of columns by the look of it.
+    Names,
+}
+
+fn first_row(first: &Row<'_>, rest: &[Row<'_>], width: usize) -> First {
+    if first.fields.iter().any(|field| KNOWN_NAMES.iter().any(|name| field.eq_ignore_ascii_case(name))) {
+        return First::Header;
+    }
     let numbers = |row: &Row<'_>| row.fields.iter().filter(|field| number(field).is_some()).count();
-    let named = first.fields.iter().any(|field| KNOWN_NAMES.iter().any(|name| field.eq_ignore_ascii_case(name)));
-    named || (numbers(first) == 0 && rest.iter().any(|row| numbers(row) > 0))
+    if numbers(first) > 0 || rest.iter().all(|row| numbers(row) == 0) {
+        return First::Data;
+    }
+    // A spoilt row of data has the label of a site, or a field that begins like a number.
+    let label = Label::new(words(rest, width).map_or("", |column| first.field(column)));
+    let like_number = |field: &str| field.trim_start_matches(['+', '-', '.']).starts_with(|c: char| c.is_ascii_digit());
+    let spoilt = standard_position(&label).is_some() || first.fields.iter().any(|f| is_missing(f) || like_number(f));
+    if spoilt && !label.as_str().is_empty() { First::Data } else { First::Names }
 }
 
 /// Names that columns of labels and positions usually bear.
@@ -132,10 +178,13 @@ const KNOWN_NAMES: [&str; 8] = ["label", "labels", "name", "electrode", "electro
 pub(super) const LABEL_NAMES: &[&str] = &KNOWN_NAMES;
 
 fn delimiter(lines: &[(usize, &str)]) -> Delimiter {
-    let sample = || lines.iter().take(20);
+    let divides = |mark: char, line: &str| match line.contains('"') {
+        true => split_quoted(line, Delimiter::Mark(mark)).len() > 1,
+        false => line.contains(mark),
+    };
     ['\t', ';', ',']
         .into_iter()
-        .find(|&mark| sample().all(|(_, line)| split(line, Delimiter::Mark(mark)).len() > 1))
+        .find(|&mark| lines.iter().take(20).all(|(_, line)| divides(mark, line)))
         .map_or(Delimiter::Blanks, Delimiter::Mark)
 }
 
@@ -203,6 +252,10 @@ mod tests {
         assert_eq!(header(",a,b\nCz,3,4"), Some(true));
         assert_eq!(header("Fz,1,2\nCz,3,4"), Some(false));
         assert_eq!(header("Fz\nCz"), Some(false));
+        assert_eq!(header("site A,left,right\nCz,3,4"), Some(true));
+        for spoilt in ["Fz,1;5,2", "X1,12uV,2uV", "X1,1.2.3,n/a", "Fz,a,b"] {
+            assert_eq!(header(&format!("{spoilt}\nCz,3,4\nPz,5,6")), Some(false), "{spoilt}");
+        }
     }
 
     #[test]
@@ -212,9 +265,15 @@ mod tests {
     }
 
     #[test]
-    fn numbers_are_finite_and_plain() {
+    fn numbers_are_plain_and_of_a_size_to_compute_with() {
         assert_eq!(number("-1.5e-3"), Some(-0.0015));
-        for not in ["inf", "NaN", "1,5", "0x10", "1e999", "", "-"] {
+        let code = |field: &str| expect_number(field, Place::default).map_err(|error| error.finding().code);
+        assert_eq!(code("-0.000e7"), Ok(-0.0));
+        for field in ["1e999", "-1e101", "1e-101", "1e-400"] {
+            assert_eq!(code(field), Err(Code::NumberRange), "{field}");
+        }
+        assert_eq!(code("1,5"), Err(Code::NumberExpected));
+        for not in ["inf", "NaN", "1,5", "0x10", "", "-"] {
             assert_eq!(number(not), None, "{not}");
         }
     }

@@ -72,6 +72,11 @@ pub fn message(finding: &Finding) -> String {
         }
         Code::ElectrodesCollinear => "All electrodes stand on one line.".into(),
         Code::ElectrodesCoplanar => "All electrodes stand in one plane, so that no sphere can be fitted.".into(),
+        Code::ElectrodeOff => format!(
+            "The electrode {} lies {} mm off the sphere of the head.",
+            value("label"),
+            number(finding, "off_mm").map(tenths).unwrap_or_default()
+        ),
         Code::UnitsUnrecognised => match finding.value("radius") {
             Some(_) => format!(
                 "The positions fit a sphere of radius {}, which is no head in metres, centimetres or millimetres; {} lies farthest from the rest.",
@@ -93,6 +98,7 @@ pub fn message(finding: &Finding) -> String {
             "Axes were assumed: x to the right, y to the front, z up. Nothing in the table was used to check this."
                 .into()
         }
+        Code::HeaderAssumed => format!("The first line of the {input} was taken as the names of its columns."),
         Code::UnitRecognised => format!(
             "Positions were taken as {}: the fitted head then has a radius of {} mm.",
             match value("unit").as_str() {
@@ -103,7 +109,7 @@ pub fn message(finding: &Finding) -> String {
             number(finding, "radius_mm").map(tenths).unwrap_or_default()
         ),
         Code::UnitSphereScaled => {
-            format!("Positions on a unit sphere were scaled to the standard head radius of {} mm.", value("radius_mm"))
+            format!("Positions on a unit sphere were scaled to a head radius of {} mm.", value("radius_mm"))
         }
         Code::StandardPositions => format!(
             "Positions are the standard ones of the labels, on a sphere of radius {} mm; none were measured.",
@@ -165,6 +171,7 @@ pub fn hint(code: Code) -> &'static str {
         Code::ElectrodesCollinear | Code::ElectrodesCoplanar => {
             "Check that the three coordinates are different columns; electrodes must surround a part of the head."
         }
+        Code::ElectrodeOff => "Correct or remove its position, or the centre and radius if you have set them.",
         Code::UnitsUnrecognised => {
             "Give positions in metres, centimetres or millimetres (head radii from 40 to 120 mm), or on a unit sphere about the origin; check the electrode named."
         }
