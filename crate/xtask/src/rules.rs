@@ -39,11 +39,11 @@ pub fn check(workspace: &Workspace) -> Result<()> {
     if !broken.is_empty() {
         bail!("against the rules of who imports whom:\n{}", broken.join("\n"));
     }
-    println!("modules import only from those below them");
+    println!("modules import only from those before them");
     Ok(())
 }
 
-/// Imports in a file of the core that point upwards.
+/// Imports in a file of the core that point the wrong way.
 fn in_core(path: &str, source: &str) -> Vec<String> {
     let mut broken = Vec::new();
     let module = path.split('/').next().unwrap_or_default().trim_end_matches(".rs");
@@ -58,11 +58,16 @@ fn in_core(path: &str, source: &str) -> Vec<String> {
         broken
             .extend(code.find(name).map(|at| format!("{path}:{}: only the bindings know JavaScript", line(&code, at))));
     }
+    for name in ORDER {
+        // Followed by a path: `super::electrodes` is another name than `super::electrode::`.
+        let hidden = code.find(&format!("super::{name}::"));
+        broken.extend(hidden.map(|at| format!("{path}:{}: write `crate::{name}`, not `super::`", line(&code, at))));
+    }
     for (at, name) in imported(&code) {
         let place = format!("{path}:{}", line(&code, at));
         match (ORDER.iter().position(|one| *one == name), own) {
             (Some(other), Some(own)) if other > own => {
-                broken.push(format!("{place}: `{module}` imports from `{name}`, which stands above it"));
+                broken.push(format!("{place}: `{module}` imports from `{name}`, which comes after it"));
             }
             (None, Some(_)) => broken.push(format!("{place}: write the module, `crate::{name}` hides it")),
             _ => {}
@@ -156,6 +161,7 @@ mod tests {
             ("forward/mod.rs", "\nuse crate::{math, analyse::analyse};"),
             ("fit.rs", "\nlet x = crate::report::row();"),
             ("fit.rs", "\nuse crate::Finding;"),
+            ("fit/mod.rs", "\nuse super::report::Row;"),
             ("fit.rs", "\nuse wasm_bindgen::JsValue;"),
         ] {
             let broken = in_core(path, source);
