@@ -120,11 +120,13 @@ pub fn message(finding: &Finding) -> String {
             value("electrodes"),
             value("degrees_of_freedom")
         ),
-        Code::AverageReferenced => format!(
-            "{} of {} maps did not have mean zero; all are referred to the average of the electrodes used.",
-            value("maps"),
-            value("count")
-        ),
+        Code::AverageReferenced => {
+            let all = "all are referred to the average of the electrodes used";
+            match value("maps").as_str() {
+                "1" => format!("The mean of 1 map was not zero; {all}."),
+                maps => format!("The means of {maps} maps were not zero; {all}."),
+            }
+        }
         Code::UnitRelative => {
             "The unit of the maps is not known: strengths are relative and not comparable between maps.".into()
         }
