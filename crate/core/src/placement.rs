@@ -19,6 +19,9 @@ const COINCIDENT_MM: f64 = 0.1;
 /// Farthest that a centre may be from the origin of the electrode table.
 const MOST_OFFSET_MM: f64 = 1000.0;
 
+/// A deviation from the sphere, in radii, that is refused.
+const FAR: f64 = 0.6;
+
 /// A deviation from the sphere that brings a warning; measured heads reach 14 to 21 mm.
 const LARGE_DEVIATION_MM: f64 = 25.0;
 
@@ -105,7 +108,7 @@ pub fn place(table: Option<&[Electrode]>, maps: &Maps, wishes: &Wishes) -> Resul
     };
     let sphere = sphere.deviations(&electrodes.iter().map(|e| e.position_mm).collect::<Vec<_>>());
     refuse_coincident(&electrodes)?;
-    refuse_far(&electrodes, sphere, wishes)?;
+    refuse_far(&electrodes, sphere.sphere, wishes)?;
     leave_out(&mut electrodes, &wishes.exclude, &mut notes);
 
     let directions = directions(&electrodes, sphere.sphere.centre);
@@ -116,17 +119,13 @@ pub fn place(table: Option<&[Electrode]>, maps: &Maps, wishes: &Wishes) -> Resul
         notes.push(Finding::new(Code::FewElectrodes).with("electrodes", used).with("degrees_of_freedom", used - 7));
     }
     notes.push(Finding::new(Code::AxesAssumed));
-    if sphere.max > LARGE_DEVIATION_MM {
-        let far = |e: &Placed| ((e.position_mm - sphere.sphere.centre).norm() - sphere.sphere.radius).abs();
-        let worst = electrodes.iter().reduce(|worst, e| if far(e) > far(worst) { e } else { worst });
-        if let Some(worst) = worst {
-            notes.push(
-                Finding::new(Code::SphereDeviation)
-                    .at(Place { label: Some(worst.label.to_string()), ..Place::input("electrodes") })
-                    .with("max_mm", sphere.max)
-                    .with("label", worst.label.as_str()),
-            );
-        }
+    if let Some((worst, off)) = most_off(&electrodes, sphere.sphere).filter(|(_, off)| *off > LARGE_DEVIATION_MM) {
+        notes.push(
+            Finding::new(Code::SphereDeviation)
+                .at(Place { label: Some(worst.label.to_string()), ..Place::input("electrodes") })
+                .with("max_mm", off)
+                .with("label", worst.label.as_str()),
+        );
     }
     Ok(Placement { electrodes, sphere, notes })
 }
@@ -286,12 +285,15 @@ fn wished(fitted: Sphere, wishes: &Wishes) -> Result<Sphere, Error> {
     Err(Finding::new(Code::HeadInvalid).at(Place::input("settings")).with("why", why).into())
 }
 
+/// The electrode farthest off a sphere, and how far.
+fn most_off(electrodes: &[Placed], sphere: Sphere) -> Option<(&Placed, f64)> {
+    let off = |e: &Placed| ((e.position_mm - sphere.centre).norm() - sphere.radius).abs();
+    electrodes.iter().map(|e| (e, off(e))).max_by(|a, b| a.1.total_cmp(&b.1))
+}
+
 /// No electrode may be so far off the sphere that its direction from the centre means nothing.
-fn refuse_far(electrodes: &[Placed], fit: SphereFit, wishes: &Wishes) -> Result<(), Error> {
-    let Sphere { centre, radius } = fit.sphere;
-    let off = |e: &&Placed| ((e.position_mm - centre).norm() - radius).abs();
-    let Some(worst) = electrodes.iter().max_by(|a, b| off(a).total_cmp(&off(b))).filter(|e| off(e) > 0.6 * radius)
-    else {
+fn refuse_far(electrodes: &[Placed], sphere: Sphere, wishes: &Wishes) -> Result<(), Error> {
+    let Some((worst, off)) = most_off(electrodes, sphere).filter(|(_, off)| *off > FAR * sphere.radius) else {
         return Ok(());
     };
     if wishes.centre_mm.is_some() || wishes.radius_mm.is_some() {
@@ -301,7 +303,7 @@ fn refuse_far(electrodes: &[Placed], fit: SphereFit, wishes: &Wishes) -> Result<
     Err(Finding::new(Code::ElectrodeOff)
         .at(Place { label: Some(worst.label.to_string()), ..Place::input("electrodes") })
         .with("label", worst.label.as_str())
-        .with("off_mm", off(&worst))
+        .with("off_mm", off)
         .into())
 }
 

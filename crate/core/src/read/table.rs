@@ -44,11 +44,11 @@ enum Delimiter {
 impl<'a> Table<'a> {
     /// Splits text into rows and fields. The delimiter is the first of tab, semicolon and comma that stands in every
     /// line of the first twenty outside quotes; otherwise runs of blanks. Empty lines and lines that begin with `#` or
-    /// `%` are passed over. The first row is a header when it holds a usual name of
-    /// the label column; else when it holds no number, numbers follow, and it does not look like a spoilt row of data.
+    /// `%` are passed over. The first row is a header when it holds a usual name of the label column; else when it holds
+    /// no number, numbers follow, and it does not look like a spoilt row of data.
     ///
     /// # Errors
-    /// `table-ragged` at the first line with another number of fields than the first one.
+    /// `electrodes-too-many`; `table-ragged` at the first line with another number of fields than the first one.
     pub fn read(text: &'a str, input: &'static str) -> Result<Self, Error> {
         let lines: Vec<(usize, &'a str)> = text
             .split('\n')
