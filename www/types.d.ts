@@ -121,7 +121,8 @@ interface Picture {
   rings: { degrees: number; radius: number }[];
   electrodes: DiscElectrode[];
   extremes: Record<MapRole, { max: number; min: number }>;
-  dipole: { x: number; y: number; dx: number; dy: number };
+  /** Null near the centre of the head and below the rim. */
+  dipole: { x: number; y: number; dx: number; dy: number } | null;
 }
 
 interface Sheet {

@@ -150,13 +150,9 @@ test("open, fit and close say the same as analyse", () => {
 
 test("odd indices are errors, and the engine goes on", () => {
   const study = engine.open({ electrodes, maps });
-  for (const index of [-1, 1.5, NaN, 1e12, undefined, "x"]) {
-    // WebAssembly takes an index as a whole number of 32 bits: whatever comes of it, it is a fit or an error of ours.
-    try {
-      assertPlain(study.fit(index), "fit");
-    } catch (error) {
-      assert.notEqual(error.code, "engine-trap", String(index));
-      assert.equal(typeof error.code, "string", `${index}: ${error}`);
+  for (const index of [-1, 1.5, NaN, Infinity, 4, 2 ** 32, 2 ** 32 + 1, 1e12, undefined, null, "1", 1n, Symbol("1")]) {
+    for (const ask of [() => study.fit(index), () => study.assess(index, [])]) {
+      assert.equal(thrown(ask).code, "map-index", String(index));
     }
   }
   assert.equal(study.fit(0).name, "left tap");
@@ -179,6 +175,20 @@ test("what is absent is null, never missing", () => {
   assert.equal(where.file, null);
   assert.equal(where.map, report.maps[1].name);
   assert.equal(report.settings.head, null);
+});
+
+test("settings that are undefined are as good as absent", () => {
+  const plain = engine.analyse({ electrodes, maps });
+  const keys = ["head", "exclude", "mapUnit", "assess"];
+  const settings = { ...Object.fromEntries(keys.map((key) => [key, undefined])) };
+  assert.deepEqual(engine.analyse({ electrodes, maps, settings }), plain);
+  assert.deepEqual(engine.analyse({ electrodes, maps, settings: { head: { radius_mm: undefined } } }).maps, plain.maps);
+  const study = engine.open({ electrodes, maps });
+  assert.deepEqual(study.assess(0), plain.maps[0]);
+  const error = thrown(() => engine.analyse({ electrodes, maps, settings: { exclude: "Cz" } }));
+  assert.equal(error.code, "settings-unknown");
+  assert.match(error.message, /exclude/);
+  assert.equal(thrown(() => engine.open({ maps, settings: new Map([["bogus", 1]]) })).code, "settings-unknown");
 });
 
 test("unknown settings are refused", () => {

@@ -4,6 +4,7 @@
  */
 
 import { openCanvas } from "./canvas.js";
+import { harmless } from "../text/figures.js";
 import { colourOfShare, colourTable, cssColour } from "./scale.js";
 
 /** @import { Surroundings } from "./canvas.js" */
@@ -14,6 +15,8 @@ const TABLE_STEPS = 511;
 const MARGIN = 20;
 /** CSS pixels from an electrode to its label. */
 const LABEL_DISTANCE = 12;
+/** Letters of a label that are shown. */
+const MOST_LETTERS = 8;
 
 /**
  * @typedef {object} DiscContent
@@ -106,7 +109,7 @@ export function paintDisc(canvas, content, around) {
   pen.stroke();
   pen.globalAlpha = 1;
   paintElectrodes(pen, picture, pixel, around);
-  if (content.dipole) paintDipole(pen, picture.dipole, pixel, around);
+  if (content.dipole && picture.dipole !== null) paintDipole(pen, picture.dipole, pixel, around);
   pen.restore();
 
   paintLetters(pen, width / 2, height / 2, unit, edge, content, around);
@@ -133,7 +136,7 @@ function paintElectrodes(pen, picture, pixel, around) {
 /**
  * An axis, not an arrow: a component's sign is arbitrary.
  * @param {CanvasRenderingContext2D} pen
- * @param {Picture["dipole"]} dipole
+ * @param {NonNullable<Picture["dipole"]>} dipole
  * @param {number} pixel
  * @param {Surroundings} around
  */
@@ -174,6 +177,12 @@ function writeHaloed(pen, text, x, y, around) {
   pen.fillText(text, x, y);
 }
 
+/** A label that leaves room for the letters around the disc. @param {string} label */
+function shortLabel(label) {
+  const letters = [...harmless(label)];
+  return letters.length > MOST_LETTERS ? `${letters.slice(0, MOST_LETTERS - 1).join("")}…` : letters.join("");
+}
+
 /**
  * Labels of the largest and smallest value, and the signs around the disc.
  * @param {CanvasRenderingContext2D} pen
@@ -196,11 +205,12 @@ function paintLetters(pen, middle, centre, unit, edge, content, around) {
     const electrode = picture.electrodes[picture.extremes[role][key]];
     if (electrode === undefined) continue;
     // The label keeps out of the way of the dipole and inside the disc, and leaves the middle free.
-    const above = content.dipole ? electrode.y >= picture.dipole.y : electrode.y >= 0;
+    const dipole = content.dipole ? picture.dipole : null;
+    const above = electrode.y >= (dipole?.y ?? 0);
     const upwards = Math.hypot(electrode.x, electrode.y) > 0.8 * edge ? electrode.y < 0 : above;
-    const distance = content.dipole ? LABEL_DISTANCE + 4 : LABEL_DISTANCE;
+    const distance = dipole === null ? LABEL_DISTANCE : LABEL_DISTANCE + 4;
     const y = centre - unit * electrode.y + (upwards ? -distance : distance);
-    writeHaloed(pen, `${sign}\u2009${electrode.label}`, middle + unit * electrode.x, y, around);
+    writeHaloed(pen, `${sign}\u2009${shortLabel(electrode.label)}`, middle + unit * electrode.x, y, around);
   }
   const reach = unit * edge;
   pen.strokeStyle = around.ink;

@@ -5,6 +5,7 @@
 
 import { makeEngine } from "./engine.js";
 import { faultOf } from "./fault.js";
+import { harmless } from "../text/figures.js";
 import { reportHead, reportMap, reportTail } from "../export/json.js";
 
 const SLICE_MS = 40;
@@ -51,8 +52,8 @@ function breathe() {
 /** @param {ReportMap} map @returns {MapSummary} */
 function summaryOf(map) {
   return "error" in map
-    ? { name: map.name, error: /** @type {UnfittedMap} */ (map).error }
-    : { name: map.name, rv: map.residual_variance };
+    ? { name: harmless(map.name), error: /** @type {UnfittedMap} */ (map).error }
+    : { name: harmless(map.name), rv: map.residual_variance };
 }
 
 /**

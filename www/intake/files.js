@@ -1,5 +1,7 @@
 /** Files and pasted text become inputs. Bytes stay as they are; the engine decides on their encoding. */
 
+import { harmless } from "../text/figures.js";
+
 const SHOW_CHARACTERS = 1 << 18;
 
 /** What a text field shows of an input; null when it is too long for one. @param {Input} input */
@@ -11,7 +13,7 @@ export function shownText(input) {
 /** @param {File} file @returns {Promise<Input>} */
 export async function inputOfFile(file) {
   try {
-    return { name: file.name, content: new Uint8Array(await file.arrayBuffer()) };
+    return { name: harmless(file.name), content: new Uint8Array(await file.arrayBuffer()) };
   } catch (error) {
     throw Object.assign(new Error(""), { code: "file-unreadable", details: String(error) });
   }

@@ -11,6 +11,9 @@ import { pageFault } from "../text/faults.js";
 
 /** @typedef {ReturnType<typeof makeSession>} Session */
 
+/** A map up to this number is kept in view when settings change. */
+const KEEP_CHOSEN = 512;
+
 export function makeSession() {
   const store = makeStore(
     /** @type {SessionState} */ ({
@@ -77,7 +80,10 @@ export function makeSession() {
     try {
       const { preamble, count } = await client.ask({ kind: "open", key });
       const names = { electrodes: inputs.electrodes?.name ?? null, maps: inputs.maps.name };
-      await fitMaps({ key, names, preamble, count, maps: [], chosen: 0, sheet: null });
+      // The same tables under other settings: the same map stays in view, unless it would have to be waited for.
+      const same = before !== null && before.count === count && before.names.maps === names.maps;
+      const chosen = same && before.chosen < KEEP_CHOSEN ? before.chosen : 0;
+      await fitMaps({ key, names, preamble, count, maps: [], chosen, sheet: null });
     } catch (fault) {
       if (pending === key) {
         pending = null;
@@ -102,8 +108,10 @@ export function makeSession() {
       const answer = store.read().answer;
       if (answer?.key === key) store.write({ answer: { ...answer }, progress });
       else if (pending === key) store.write({ progress });
-      const fitted = maps.findIndex((map) => "rv" in map);
-      if (shown === null && fitted >= 0) shown = show({ ...draft, chosen: fitted });
+      const kept = maps[draft.chosen];
+      const first = maps.findIndex((map) => "rv" in map);
+      const fitted = kept !== undefined && "rv" in kept ? draft.chosen : first;
+      if (shown === null && kept !== undefined && fitted >= 0) shown = show({ ...draft, chosen: fitted });
     });
     if (shown !== null) return shown;
     const first = maps[0];

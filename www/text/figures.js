@@ -10,9 +10,16 @@ export function typeset(text) {
     .replace(/(\d) (?=%|mm\b|cm\b|S\/m|nAm|µV|V\b)/g, `$1${NO_BREAK}`);
 }
 
-/** A fraction as a percentage with one decimal. @param {number} fraction */
+/** A fraction as a percentage, with the digits that the engine gives it. @param {number} fraction */
 export function percentText(fraction) {
-  return `${(100 * fraction).toFixed(1)}${NO_BREAK}%`;
+  const percent = 100 * fraction;
+  const digits = percent >= 1 || percent === 0 ? percent.toFixed(1) : Number(percent.toPrecision(2)).toString();
+  return `${percent > 0 && percent < 0.001 ? "under 0.001" : digits}${NO_BREAK}%`;
+}
+
+/** A name from outside, without what would turn the writing round or cannot be seen. @param {string} name */
+export function harmless(name) {
+  return name.replace(/[\u0000-\u001f\u007f-\u009f\u200e\u200f\u202a-\u202e\u2066-\u2069]/g, "\ufffd");
 }
 
 /** @param {number} factor */

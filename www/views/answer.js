@@ -24,8 +24,10 @@ export function showAnswer(session) {
     },
   );
   session.watch(
-    (state) => state.answer?.sheet,
-    (sheet, { answer }) => {
+    // A map without a sheet says why by its own error.
+    (state) => state.answer?.sheet ?? state.answer?.maps[state.answer.chosen],
+    (_, { answer }) => {
+      const sheet = answer?.sheet;
       need("answer", HTMLElement).hidden = answer === null;
       need("fitted", HTMLElement).hidden = !sheet;
       if (answer === null) return;

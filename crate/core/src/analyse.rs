@@ -19,6 +19,9 @@ use core::ops::Range;
 use sha2::{Digest, Sha256};
 use std::sync::OnceLock;
 
+/// Distance from the centre below which a position has no site above and no place seen from above.
+const CENTRE_MM: f64 = 5.0;
+
 /// What to analyse.
 #[derive(Clone, Debug, Default)]
 pub struct Request<'a> {
@@ -204,7 +207,8 @@ impl Study {
             .collect();
         let layers = [&map.measured[..], &map.projected, &map.residual];
         let limit = map.scale_limit();
-        Some(Picture::new(spline, electrodes, layers, limit, map.dipole.canonical_mm, map.dipole.direction))
+        let position = Some(map.dipole.canonical_mm).filter(|position| position.norm() > CENTRE_MM);
+        Some(Picture::new(spline, electrodes, layers, limit, position, map.dipole.direction))
     }
 
     fn no_map(&self, index: usize) -> Error {
@@ -278,10 +282,10 @@ impl Study {
     }
 
     fn equivalent_dipole(&self, found: &Fit) -> EquivalentDipole {
-        /// Half the width of the midline, and the distance from the centre below which no site is above.
+        /// Half the width of the midline.
         const MIDLINE_MM: f64 = 5.0;
-        /// Distance from the centre below which the radius has no direction worth its name.
-        const CENTRE_MM: f64 = 1.0;
+        /// Distance from the centre below which the radius is rounding.
+        const RADIUS_MM: f64 = 1.0;
         let sphere = self.placement.sphere.sphere;
         let canonical_mm = found.position * sphere.radius;
         let distance = canonical_mm.norm();
@@ -290,7 +294,7 @@ impl Study {
         EquivalentDipole {
             position_mm: sphere.centre + canonical_mm,
             canonical_mm,
-            nearest_site: nearest_site(canonical_mm).filter(|_| distance > MIDLINE_MM),
+            nearest_site: nearest_site(canonical_mm).filter(|_| distance > CENTRE_MM),
             side: match canonical_mm[0] {
                 x if x > MIDLINE_MM => "right",
                 x if x < -MIDLINE_MM => "left",
@@ -301,7 +305,7 @@ impl Study {
             strength_unit: if unit == MapUnit::Relative { "relative" } else { "nAm" },
             eccentricity: found.position.norm() / self.shells.brain_ratio(),
             depth_mm: self.shells.inner_skull_ratio() * sphere.radius - distance,
-            radial_share: canonical_mm.unit().filter(|_| distance > CENTRE_MM).map(|radial| {
+            radial_share: canonical_mm.unit().filter(|_| distance > RADIUS_MM).map(|radial| {
                 let along: f64 = direction.dot(radial);
                 along * along
             }),

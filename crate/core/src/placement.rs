@@ -107,9 +107,9 @@ pub fn place(table: Option<&[Electrode]>, maps: &Maps, wishes: &Wishes) -> Resul
         }
     };
     let sphere = sphere.deviations(&electrodes.iter().map(|e| e.position_mm).collect::<Vec<_>>());
+    leave_out(&mut electrodes, &wishes.exclude, &mut notes);
     refuse_coincident(&electrodes)?;
     refuse_far(&electrodes, sphere.sphere, wishes)?;
-    leave_out(&mut electrodes, &wishes.exclude, &mut notes);
 
     let directions = directions(&electrodes, sphere.sphere.centre);
     let used = directions.len();
@@ -162,6 +162,9 @@ fn match_labels(
             None => unplaced.push(label.to_string()),
         }
     }
+    if maps.values.iter().all(|value| value.is_nan()) {
+        return Err(Finding::new(Code::MapsNone).at(Place::input("maps")).into());
+    }
     if placed.is_empty() {
         let some = |labels: Vec<String>| labels.into_iter().take(5).collect::<Vec<_>>();
         let electrodes = table.map(|t| t.iter().map(|e| e.label.to_string()).collect()).unwrap_or_default();
@@ -196,13 +199,16 @@ fn refuse_few(found: usize) -> Result<(), Error> {
         .into())
 }
 
+/// Least share of the scatter that a third dimension must have: a fifth of a millimetre on a head.
+const FLAT: f64 = 1e-5;
+
 fn refuse_flat(points: &[Vec3]) -> Result<(), Error> {
     let [least, middle, most] = spread(points).values;
     let code = if most <= 0.0 {
         Code::ElectrodesCoincident
-    } else if middle <= 1e-9 * most {
+    } else if middle <= FLAT * most {
         Code::ElectrodesCollinear
-    } else if least <= 1e-9 * most {
+    } else if least <= FLAT * most {
         Code::ElectrodesCoplanar
     } else {
         return Ok(());
@@ -259,8 +265,9 @@ fn farthest(electrodes: &[Placed]) -> String {
 }
 
 fn refuse_coincident(electrodes: &[Placed]) -> Result<(), Error> {
-    for (index, a) in electrodes.iter().enumerate() {
-        if let Some(b) = electrodes[..index].iter().find(|b| (a.position_mm - b.position_mm).norm() < COINCIDENT_MM) {
+    let used: Vec<&Placed> = electrodes.iter().filter(|e| e.used).collect();
+    for (index, a) in used.iter().enumerate() {
+        if let Some(b) = used[..index].iter().find(|b| (a.position_mm - b.position_mm).norm() < COINCIDENT_MM) {
             return Err(Finding::new(Code::ElectrodesCoincident)
                 .at(Place { label: Some(a.label.to_string()), ..Place::input("electrodes") })
                 .with("label", a.label.as_str())
@@ -276,19 +283,19 @@ fn wished(fitted: Sphere, wishes: &Wishes) -> Result<Sphere, Error> {
     let sphere =
         Sphere { centre: wishes.centre_mm.unwrap_or(fitted.centre), radius: wishes.radius_mm.unwrap_or(fitted.radius) };
     let why = if !(sphere.centre.is_finite() && sphere.centre.norm() <= MOST_OFFSET_MM) {
-        "the centre is more than 1 m from the origin"
+        "centre"
     } else if !HEAD_RADII_MM.contains(&sphere.radius) {
-        "the radius is not between 40 and 120 mm"
+        "radius"
     } else {
         return Ok(sphere);
     };
     Err(Finding::new(Code::HeadInvalid).at(Place::input("settings")).with("why", why).into())
 }
 
-/// The electrode farthest off a sphere, and how far.
+/// The used electrode farthest off a sphere, and how far.
 fn most_off(electrodes: &[Placed], sphere: Sphere) -> Option<(&Placed, f64)> {
     let off = |e: &Placed| ((e.position_mm - sphere.centre).norm() - sphere.radius).abs();
-    electrodes.iter().map(|e| (e, off(e))).max_by(|a, b| a.1.total_cmp(&b.1))
+    electrodes.iter().filter(|e| e.used).map(|e| (e, off(e))).max_by(|a, b| a.1.total_cmp(&b.1))
 }
 
 /// No electrode may be so far off the sphere that its direction from the centre means nothing.
@@ -297,8 +304,8 @@ fn refuse_far(electrodes: &[Placed], sphere: Sphere, wishes: &Wishes) -> Result<
         return Ok(());
     };
     if wishes.centre_mm.is_some() || wishes.radius_mm.is_some() {
-        let why = format!("with this centre and radius the electrode {} lies far off the sphere", worst.label);
-        return Err(Finding::new(Code::HeadInvalid).at(Place::input("settings")).with("why", why).into());
+        let finding = Finding::new(Code::HeadInvalid).at(Place::input("settings")).with("why", "electrode");
+        return Err(finding.with("label", worst.label.as_str()).into());
     }
     Err(Finding::new(Code::ElectrodeOff)
         .at(Place { label: Some(worst.label.to_string()), ..Place::input("electrodes") })

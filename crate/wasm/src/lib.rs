@@ -10,7 +10,7 @@ use inward_core::fit::BATCH;
 use inward_core::{MapReport, Request, Settings, Study as Inner};
 use js_sys::{Array, Object};
 use wasm_bindgen::prelude::*;
-use wire::{Inputs, plain, set, thrown, words};
+use wire::{Inputs, misunderstood, plain, set, thrown};
 
 /// Panic messages go to the console, where the calling script finds them for its copyable details.
 #[wasm_bindgen(start)]
@@ -81,7 +81,8 @@ impl Study {
     }
 
     /// The fit of one map.
-    pub fn fit(&self, index: usize) -> Result<JsValue, JsValue> {
+    pub fn fit(&self, index: JsValue) -> Result<JsValue, JsValue> {
+        let index = wire::index(&index, self.0.count())?;
         plain(&self.0.fit(index).map_err(|error| thrown(&error))?)
     }
 
@@ -106,14 +107,19 @@ impl Study {
     }
 
     /// The fit of one map with what is named added to it.
-    pub fn assess(&self, index: usize, what: JsValue) -> Result<JsValue, JsValue> {
-        let what = serde_wasm_bindgen::from_value::<Vec<inward_core::report::Assessment>>(what)
-            .map_err(|problem| thrown(&Settings::unknown(words(&problem))))?;
+    pub fn assess(&self, index: JsValue, what: JsValue) -> Result<JsValue, JsValue> {
+        let index = wire::index(&index, self.0.count())?;
+        let what = match what.is_undefined() {
+            true => Vec::new(),
+            false => serde_wasm_bindgen::from_value::<Vec<inward_core::report::Assessment>>(what)
+                .map_err(|_| thrown(&Settings::unknown(misunderstood("assess"))))?,
+        };
         plain(&self.0.assess(index, &what).map_err(|error| thrown(&error))?)
     }
 
     /// The answer for one map in words, numbers and pictures; `null` for a map that cannot be fitted.
-    pub fn sheet(&self, index: usize) -> Result<JsValue, JsValue> {
+    pub fn sheet(&self, index: JsValue) -> Result<JsValue, JsValue> {
+        let index = wire::index(&index, self.0.count())?;
         match self.0.fit(index).map_err(|error| thrown(&error))? {
             MapReport::Failed { .. } => Ok(JsValue::NULL),
             MapReport::Fitted(map) => {

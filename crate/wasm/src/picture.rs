@@ -25,12 +25,10 @@ pub(crate) fn to_js(picture: &Picture) -> Object {
             object(&[("label", label), ("x", x.into()), ("y", y.into()), ("used", electrode.used.into())])
         })
         .collect::<Array>();
-    let dipole = object(&[
-        ("x", picture.dipole[0].into()),
-        ("y", picture.dipole[1].into()),
-        ("dx", picture.axis[0].into()),
-        ("dy", picture.axis[1].into()),
-    ]);
+    let dipole = picture.dipole.map_or(JsValue::NULL, |[x, y]| {
+        let [dx, dy] = picture.axis;
+        object(&[("x", x.into()), ("y", y.into()), ("dx", dx.into()), ("dy", dy.into())]).into()
+    });
     let extremes = |layer: &Layer| {
         object(&[("max", (layer.extremes.max as u32).into()), ("min", (layer.extremes.min as u32).into())]).into()
     };
@@ -44,7 +42,7 @@ pub(crate) fn to_js(picture: &Picture) -> Object {
         ("outline", points(&picture.outline).into()),
         ("rings", rings.into()),
         ("electrodes", electrodes.into()),
-        ("dipole", dipole.into()),
+        ("dipole", dipole),
     ]);
     for (name, layer) in layers {
         set(&result, name, Float32Array::from(&layer.raster[..]).into());

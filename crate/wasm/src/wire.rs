@@ -33,18 +33,57 @@ impl Inputs {
     }
 }
 
-/// The settings; `serde_wasm_bindgen` asks objects for the keys it knows, so that the others are looked for here.
+/// The settings. Keys that are `undefined` are as good as absent; `serde_wasm_bindgen` asks objects for the keys it knows,
+/// so that others are looked for here.
 fn settings(given: &JsValue) -> Result<Settings, JsValue> {
     if given.is_undefined() || given.is_null() {
         return Ok(Settings::default());
     }
     let unknown = |problem: String| thrown(&Settings::unknown(problem));
-    let settings: Settings =
-        serde_wasm_bindgen::from_value(given.clone()).map_err(|problem| unknown(words(&problem)))?;
-    match misplaced(given, &plain(&settings)?) {
+    if !given.is_object() {
+        return Err(unknown(misunderstood("settings")));
+    }
+    let given = without_undefined(given);
+    let settings: Settings = serde_wasm_bindgen::from_value(given.clone()).map_err(|_| {
+        let alone = |key: &String| {
+            let one = Object::new();
+            set(&one, key, Reflect::get(&given, &key.as_str().into()).unwrap_or(JsValue::UNDEFINED));
+            serde_wasm_bindgen::from_value::<Settings>(one.into()).is_err()
+        };
+        unknown(misunderstood(&keys(&given).find(alone).unwrap_or_else(|| "settings".into())))
+    })?;
+    match misplaced(&given, &plain(&settings)?) {
         Some(path) => Err(unknown(format!("nothing of this kind belongs at `settings{path}`"))),
         None => Ok(settings),
     }
+}
+
+/// What is said of a value of the wrong kind.
+pub(crate) fn misunderstood(key: &str) -> String {
+    format!("the value of `{key}` is not one that it can have")
+}
+
+fn keys(object: &JsValue) -> impl Iterator<Item = String> {
+    Object::keys(object.unchecked_ref::<Object>())
+        .iter()
+        .filter_map(|key| key.as_string())
+        .collect::<Vec<_>>()
+        .into_iter()
+}
+
+/// A copy of a plain object, and of those in it, without keys that are `undefined`; anything else as it is.
+fn without_undefined(value: &JsValue) -> JsValue {
+    if !value.is_object() || Array::is_array(value) || value.is_instance_of::<js_sys::Map>() {
+        return value.clone();
+    }
+    let copy = Object::new();
+    for key in keys(value) {
+        let part = Reflect::get(value, &key.as_str().into()).unwrap_or(JsValue::UNDEFINED);
+        if !part.is_undefined() {
+            set(&copy, &key, without_undefined(&part));
+        }
+    }
+    copy.into()
 }
 
 /// The path of a key in `given` that `understood` lacks, or of a list where it has none.
@@ -52,21 +91,16 @@ fn misplaced(given: &JsValue, understood: &JsValue) -> Option<String> {
     if !given.is_object() {
         return None;
     }
-    if !understood.is_object() || Array::is_array(given) != Array::is_array(understood) {
+    let alike = understood.is_object() && Array::is_array(given) == Array::is_array(understood);
+    if !alike || given.is_instance_of::<js_sys::Map>() {
         return Some(String::new());
     }
-    Object::keys(given.unchecked_ref::<Object>()).iter().filter_map(|key| key.as_string()).find_map(|key| {
+    keys(given).find_map(|key| {
         let part = |of: &JsValue| Reflect::get(of, &key.as_str().into()).unwrap_or(JsValue::UNDEFINED);
         let known = Reflect::has(understood, &key.as_str().into()).unwrap_or(false);
         let rest = if known { misplaced(&part(given), &part(understood))? } else { String::new() };
         Some(format!(".{key}{rest}"))
     })
-}
-
-/// What `serde` says, without the name of the JavaScript class it is wrapped in.
-pub(crate) fn words(problem: &serde_wasm_bindgen::Error) -> String {
-    let text = problem.to_string();
-    text.strip_prefix("Error: ").unwrap_or(&text).to_owned()
 }
 
 /// The content of an input, a string or bytes; `None` where it is left out.
@@ -79,6 +113,18 @@ pub(crate) fn bytes(value: &JsValue, name: &str) -> Result<Option<Vec<u8>>, JsVa
         Ok(Some(array.to_vec()))
     } else {
         Err(thrown(&Settings::unknown(format!("`{name}` is neither a string nor a Uint8Array"))))
+    }
+}
+
+/// The number of a map; what is no whole number from 0 on names no map.
+pub(crate) fn index(value: &JsValue, count: usize) -> Result<usize, JsValue> {
+    match value.as_f64() {
+        Some(number) if number >= 0.0 && number < count as f64 && number.fract() == 0.0 => Ok(number as usize),
+        number => {
+            let written = number.map_or_else(|| "of that kind".into(), |number| number.to_string());
+            let finding = Finding::new(Code::MapIndex).at(Place::input("maps"));
+            Err(thrown(&finding.with("index", written).with("count", count).into()))
+        }
     }
 }
 

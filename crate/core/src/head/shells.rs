@@ -47,24 +47,21 @@ impl Shells {
             )
         };
         if specs.is_empty() || specs.len() > Self::MOST {
-            let why = "a head has 1 to 16 shells";
+            let why = "shell-count";
             return Err(Finding::new(Code::HeadInvalid).at(Place::input("settings")).with("why", why).into());
         }
         let mut inner = 0.05;
         for (index, spec) in specs.iter().enumerate() {
             if !(spec.conductivity >= 1e-6 && spec.conductivity <= 1e3) {
-                return Err(invalid(index + 1, "its conductivity is not between 0.000001 and 1000 S/m"));
+                return Err(invalid(index + 1, "conductivity"));
             }
             if !(spec.ratio > inner && spec.ratio <= 1.0) {
-                return Err(invalid(
-                    index + 1,
-                    "its ratio is not above that of the shell inside it (0.05 for the innermost) and at most 1",
-                ));
+                return Err(invalid(index + 1, "ratio"));
             }
             inner = spec.ratio;
         }
         if inner != 1.0 {
-            return Err(invalid(specs.len(), "the ratio of the outermost shell is not 1"));
+            return Err(invalid(specs.len(), "outermost"));
         }
         Ok(Self { specs })
     }

@@ -10,7 +10,7 @@ const INPUT: &str = "electrodes";
 /// Electrodes of a delimited table, label, x, y, z in any unit or labels alone, with what was assumed.
 ///
 /// Columns are found by their names (label, name, electrode, channel, site; x, y, z), without a header by their content:
-/// the first column that holds words, and the first three others. A missing position (`n/a`, empty) is allowed.
+/// the column that holds words, and the first three others that do not count the rows. A missing position (`n/a`, empty) is allowed.
 ///
 /// # Errors
 /// Those of [`decode`] and [`Table::read`]; `table-columns`, `number-expected`, `number-range`, `label-duplicate`,
@@ -45,20 +45,20 @@ fn columns(table: &Table<'_>) -> Result<Columns, Error> {
                 .with("width", table.width),
         )
     };
-    let label = table.column(LABEL_NAMES).or_else(|| table.words()).ok_or_else(|| lacks("a column of labels"))?;
+    let label = table.column(LABEL_NAMES).or_else(|| table.words()).ok_or_else(|| lacks("label-column"))?;
     if table.width == 1 {
         return Ok(Columns { label, xyz: None });
     }
-    let named = [table.column(&["x"]), table.column(&["y"]), table.column(&["z"])];
+    let named = ['x', 'y', 'z'].map(|axis| table.axis(axis));
     if let [Some(x), Some(y), Some(z)] = named {
         return Ok(Columns { label, xyz: Some([x, y, z]) });
     }
-    let numeric =
-        |column: &usize| *column != label && table.rows.iter().any(|row| number(row.field(*column)).is_some());
+    let holds_numbers = |column: usize| table.rows.iter().any(|row| number(row.field(column)).is_some());
+    let numeric = |column: &usize| *column != label && !table.counts(*column) && holds_numbers(*column);
     let mut others = (0..table.width).filter(numeric);
     match (others.next(), others.next(), others.next()) {
         (Some(x), Some(y), Some(z)) => Ok(Columns { label, xyz: Some([x, y, z]) }),
-        _ => Err(lacks("three columns of coordinates x, y, z")),
+        _ => Err(lacks("coordinates")),
     }
 }
 
@@ -84,7 +84,7 @@ pub(super) fn label(row: &Row<'_>, column: usize, input: &'static str) -> Result
     if label.as_str().is_empty() {
         return Err(Finding::new(Code::TableColumns)
             .at(Place::field(input, row.line, column + 1))
-            .with("lacks", "a label")
+            .with("lacks", "label")
             .into());
     }
     Ok(label)

@@ -21,26 +21,27 @@ const ROUGH: f64 = 0.12;
 const SHALLOW: f64 = 1.35;
 
 /// Tells tables apart by their content. Electrodes have columns named x, y and z, or no other column than labels, or a
-/// column of labels and three unnamed columns of numbers that lie about on a sphere. All else is taken for maps, also
+/// column of labels and three unnamed columns of numbers, besides one that counts the rows, that lie about on a sphere. All else is taken for maps, also
 /// what cannot be read, so that reading it says what is wrong.
 pub fn kind(bytes: &[u8]) -> Kind {
     let input = "maps";
     let Ok(table) = decode(bytes, input).and_then(|text| Table::read(text, input)) else { return Kind::Maps };
-    if ["x", "y", "z"].iter().all(|axis| table.column(&[axis]).is_some()) {
+    if ['x', 'y', 'z'].iter().all(|&axis| table.axis(axis).is_some()) {
         return Kind::Electrodes;
     }
     let Some(label) = table.column(LABEL_NAMES).or_else(|| table.words()) else { return Kind::Maps };
     if table.width == 1 {
         return Kind::Electrodes;
     }
-    if table.header.is_some() || table.width != 4 {
+    let numeric: Vec<usize> = (0..table.width).filter(|&column| column != label && !table.counts(column)).collect();
+    if table.header.is_some() || numeric.len() != 3 {
         return Kind::Maps;
     }
     let points: Vec<Vec3> = table
         .rows
         .iter()
         .filter_map(|row| {
-            let mut numbers = (0..4).filter(|&column| column != label).map(|column| number(row.field(column)));
+            let mut numbers = numeric.iter().map(|&column| number(row.field(column)));
             Some(Vec3::new(numbers.next()??, numbers.next()??, numbers.next()??))
         })
         .collect();

@@ -21,7 +21,7 @@ pub fn read_maps(bytes: &[u8]) -> Result<(Maps, Vec<Finding>), Error> {
     let label_column = table.column(LABEL_NAMES).or_else(|| table.words()).ok_or_else(|| {
         Finding::new(Code::TableColumns)
             .at(Place::line(INPUT, first_line))
-            .with("lacks", "a column of labels")
+            .with("lacks", "label-column")
             .with("width", table.width)
     })?;
     let columns: Vec<usize> = (0..table.width).filter(|&column| column != label_column).collect();

@@ -71,6 +71,12 @@ impl<'a> Table<'a> {
         let delimiter = delimiter(&lines);
         let mut rows: Vec<Row> =
             lines.iter().map(|&(line, text)| Row { line, fields: split(text, delimiter) }).collect();
+        // A mark at the end of every line begins no column.
+        while !rows.is_empty()
+            && rows.iter().all(|row| row.fields.len() > 1 && row.fields.last().is_some_and(|field| field.is_empty()))
+        {
+            rows.iter_mut().for_each(|row| drop(row.fields.pop()));
+        }
         let width = rows.first().map_or(0, |row| row.fields.len());
         for row in &rows {
             if row.fields.len() != width {
@@ -97,6 +103,23 @@ impl<'a> Table<'a> {
     pub fn column(&self, names: &[&str]) -> Option<usize> {
         let header = self.header.as_ref()?;
         header.fields.iter().position(|field| names.iter().any(|name| field.eq_ignore_ascii_case(name)))
+    }
+
+    /// Number of the column, from 0, that the header names as an axis: `x`, or `x` with a unit such as `x_mm`, `x (m)`.
+    pub fn axis(&self, axis: char) -> Option<usize> {
+        let named = |field: &Field<'_>| {
+            let mut letters = field.chars();
+            letters.next().is_some_and(|first| first.eq_ignore_ascii_case(&axis))
+                && letters.next().is_none_or(|second| !second.is_alphanumeric())
+        };
+        self.header.as_ref()?.fields.iter().position(named)
+    }
+
+    /// Whether a column counts the rows.
+    pub fn counts(&self, column: usize) -> bool {
+        let first = self.rows.first().and_then(|row| number(row.field(column)));
+        let follows = |(index, row): (usize, &Row<'_>)| number(row.field(column)) == first.map(|f| f + index as f64);
+        first.is_some() && self.rows.len() > 2 && self.rows.iter().enumerate().all(follows)
     }
 
     /// Number of the column, from 0, in which most fields are words: neither a number nor missing. The first of equals.
@@ -256,6 +279,18 @@ mod tests {
         for spoilt in ["Fz,1;5,2", "X1,12uV,2uV", "X1,1.2.3,n/a", "Fz,a,b"] {
             assert_eq!(header(&format!("{spoilt}\nCz,3,4\nPz,5,6")), Some(false), "{spoilt}");
         }
+    }
+
+    #[test]
+    fn marks_at_the_end_begin_no_column_and_axes_may_bear_units() {
+        let table = |text: &'static str| Table::read(text, "maps").ok();
+        assert_eq!(table("Cz,1,,\nFz,2,,").map(|table| table.width), Some(2));
+        let axes = table("label,x_mm,Y (mm),z,zone\nCz,1,2,3,4");
+        assert_eq!(
+            axes.map(|table| ['x', 'y', 'z', 'l'].map(|axis| table.axis(axis))),
+            Some([Some(1), Some(2), Some(3), None])
+        );
+        assert_eq!(table("7,Cz\n8,Fz\n9,Oz").map(|table| table.counts(0)), Some(true));
     }
 
     #[test]

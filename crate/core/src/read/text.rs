@@ -9,7 +9,6 @@ pub fn decode<'a>(bytes: &'a [u8], input: &'static str) -> Result<&'a str, Error
     if bytes.len() > MOST_BYTES {
         return Err(Finding::new(Code::InputTooLarge)
             .at(Place::input(input))
-            .with("mib", bytes.len() >> 20)
             .with("most_mib", MOST_BYTES >> 20)
             .into());
     }

@@ -7,6 +7,8 @@ use crate::finding::{Code, Finding, Place, Value};
 pub fn message(finding: &Finding) -> String {
     let value = |name: &str| match finding.value(name) {
         None => String::new(),
+        Some(Value::Text(text)) if name == "why" || name == "lacks" => reason(text).to_owned(),
+        Some(Value::Text(text)) if name == "problem" => text.clone(),
         Some(Value::Text(text)) => clipped(text),
         Some(Value::Number(number)) => significant(*number, 3),
         Some(Value::Count(count)) => count.to_string(),
@@ -19,11 +21,11 @@ pub fn message(finding: &Finding) -> String {
         Code::SettingsUnknown => format!("A setting was not understood: {}.", value("problem")),
         Code::HeadInvalid => match finding.value("shell") {
             Some(Value::Count(shell)) => format!("The head cannot be computed: shell {shell}: {}.", value("why")),
-            _ => format!("The head cannot be computed: {}.", value("why")),
+            _ => format!("The head cannot be computed: {}{}.", value("why"), value("label")),
         },
         Code::InputEmpty => format!("The {input} holds nothing."),
         Code::InputTooLarge => {
-            format!("The {input} is {} MiB large; at most {} MiB are read.", value("mib"), value("most_mib"))
+            format!("The {input} is larger than {} MiB, the most that is read.", value("most_mib"))
         }
         Code::InputEncoding => {
             let byte = place.and_then(|p| p.byte).unwrap_or(1);
@@ -59,7 +61,7 @@ pub fn message(finding: &Finding) -> String {
             value("electrodes")
         ),
         Code::ElectrodesTooFew => format!(
-            "{} electrodes have a position and a value and are not left out; at least {} are needed.",
+            "Electrodes that have a position and a value and are not left out: {}; at least {} are needed.",
             value("found"),
             value("fewest")
         ),
@@ -85,7 +87,7 @@ pub fn message(finding: &Finding) -> String {
             ),
             None => format!("The positions fit no sphere; {} lies farthest from the rest.", value("label")),
         },
-        Code::MapsNone => "The table of maps has labels but no column of values.".into(),
+        Code::MapsNone => "The table of maps holds no values.".into(),
         Code::MapsTooMany => {
             format!("The table holds {} maps; at most {} are read.", value("found"), value("most"))
         }
@@ -156,7 +158,7 @@ pub fn hint(code: Code) -> &'static str {
         Code::InputTooLarge => "Split the table, or leave out columns that are not needed.",
         Code::InputEncoding => "Save the table as text in UTF-8 and give it again.",
         Code::TableColumns => {
-            "Electrodes need the columns label, x, y, z, or labels alone; maps need a label and at least one value in each line."
+            "Electrodes need the columns label, x, y, z, or labels alone, one in each line; maps need a label and at least one value in each line. A first line with such names settles which column is which."
         }
         Code::TableRagged => "Give every line the same number of fields, divided by the same mark.",
         Code::NumberExpected => {
@@ -203,6 +205,23 @@ fn input_name(place: Option<&Place>) -> &'static str {
         Some("electrodes") => "table of electrodes",
         Some("maps") => "table of maps",
         _ => "input",
+    }
+}
+
+/// What lies behind an error, by its key.
+fn reason(key: &str) -> &'static str {
+    match key {
+        "shell-count" => "a head has 1 to 16 shells",
+        "conductivity" => "its conductivity is not between 0.000001 and 1000 S/m",
+        "ratio" => "its ratio is not above that of the shell inside it (0.05 for the innermost) and at most 1",
+        "outermost" => "the ratio of the outermost shell is not 1",
+        "centre" => "the centre is not within 1 m of the origin",
+        "radius" => "the radius is not between 40 and 120 mm",
+        "electrode" => "with this centre and radius an electrode lies far off the sphere: ",
+        "label-column" => "a column of labels",
+        "coordinates" => "three columns of coordinates x, y, z",
+        "label" => "a label",
+        _ => "",
     }
 }
 

@@ -89,6 +89,7 @@ fn sentence(map: &FittedMap) -> String {
     let site = match dipole.nearest_site {
         Some(site) => format!("under {site}"),
         None if dipole.eccentricity < 0.1 => "near the centre of the sphere".into(),
+        None if dipole.canonical_mm[2] < 0.0 => "low in the head, under no standard site".into(),
         None => "away from all standard sites".into(),
     };
     let place = format!(

@@ -25,8 +25,8 @@ pub struct Picture {
     pub rings: Vec<Ring>,
     /// All electrodes.
     pub electrodes: Vec<PictureElectrode>,
-    /// Where the equivalent position lies on the disc.
-    pub dipole: DiscPoint,
+    /// Where the equivalent position lies on the disc; absent near the centre of the head and below the rim.
+    pub dipole: Option<DiscPoint>,
     /// The horizontal part of the dipole's axis, at most of length 1.
     pub axis: DiscPoint,
 }
@@ -88,7 +88,7 @@ impl Picture {
         electrodes: Vec<(String, Vec3, bool)>,
         [measured, projected, residual]: [&[f64]; 3],
         limit: f64,
-        position: Vec3,
+        position: Option<Vec3>,
         direction: Vec3,
     ) -> Self {
         let disc = Disc::holding(electrodes.iter().map(|(_, direction, _)| *direction));
@@ -136,7 +136,7 @@ impl Picture {
             rings: [30.0, 60.0, 90.0, disc.rim_degrees()]
                 .map(|degrees| Ring { degrees, radius: degrees / disc.rim_degrees() })
                 .to_vec(),
-            dipole: disc.project(position),
+            dipole: position.map(|position| disc.project(position)).filter(|[x, y]| libm::hypot(*x, *y) <= 1.0),
             axis: [direction[0], direction[1]],
             electrodes,
         }
