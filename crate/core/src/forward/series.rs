@@ -9,7 +9,8 @@ use crate::math::Lanes;
 /// 40:335–349). On the unit sphere a homogeneous head has gₙ = (2n + 1) / n.
 ///
 /// The terms needed at a position come from a bound of what is left out. The inequality n²T² + T′² ≤ n² max T² for
-/// trigonometric polynomials of degree n (Bernstein & Szegő) gives |∇Hₙ| ≤ n |p|ⁿ⁻¹, hence term n is at most fₙ (2n + 1) |p|ⁿ⁻¹ with fₙ = n gₙ / (2n + 1).
+/// trigonometric polynomials of degree n (Bernstein & Szegő) gives |∇Hₙ| ≤ n |p|ⁿ⁻¹, hence term n is at most
+/// fₙ (2n + 1) |p|ⁿ⁻¹ with fₙ = n gₙ / (2n + 1).
 #[derive(Clone, Debug)]
 pub struct Series {
     /// gₙ for n = 1, 2, …; index 0 is unused.

@@ -16,11 +16,6 @@ pub struct Eigen {
 }
 
 impl Symmetric3 {
-    /// `factor` times the identity.
-    pub fn diagonal(factor: f64) -> Self {
-        Self { rows: [[factor, 0.0, 0.0], [0.0, factor, 0.0], [0.0, 0.0, factor]] }
-    }
-
     /// From a function of row and column, asked for the upper triangle only.
     pub fn from_fn(entry: impl Fn(usize, usize) -> f64) -> Self {
         let mut rows = [[0.0; 3]; 3];
@@ -117,6 +112,6 @@ mod tests {
         assert!(e.values[0] <= e.values[1] && e.values[1] <= e.values[2]);
         let x = a.solve(Vec3::new(1.0, -2.0, 0.5)).unwrap();
         assert!((a.apply(x) - Vec3::new(1.0, -2.0, 0.5)).norm() < 1e-14);
-        assert!(Symmetric3::diagonal(-1.0).solve(Vec3::ZERO).is_none());
+        assert!(Symmetric3::default().solve(Vec3::ZERO).is_none());
     }
 }

@@ -221,7 +221,10 @@ fn reason(key: &str) -> &'static str {
         "label-column" => "a column of labels",
         "coordinates" => "three columns of coordinates x, y, z",
         "label" => "a label",
-        _ => "",
+        _ => {
+            debug_assert!(false, "no reason for {key}");
+            ""
+        }
     }
 }
 
