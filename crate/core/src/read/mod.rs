@@ -1,12 +1,14 @@
 //! Bytes to tables to electrodes and maps. Every outcome is a value or an error that says where; nothing panics.
 #![deny(clippy::unwrap_used, clippy::expect_used, clippy::indexing_slicing)]
 
+mod content;
 mod electrodes;
 mod kind;
 mod maps;
 mod table;
 mod text;
 
+pub use content::{Body, Cells, Content, Encoding, Format, Part, Record, Tree};
 pub use electrodes::read_electrodes;
 pub use kind::{Kind, kind};
 pub use maps::read_maps;
