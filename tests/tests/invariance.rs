@@ -200,9 +200,9 @@ type Change = fn(&str) -> String;
 
 #[test]
 fn delimiters_line_ends_and_headers_do_not_matter() {
-    let (electrodes, maps) = (example("listening_electrodes.tsv"), example("listening_maps.tsv"));
+    let (electrodes, maps) = (example("watch_electrodes.tsv"), example("watch_maps.tsv"));
     // Names without blanks, so that blanks can part the columns.
-    let maps = maps.replace("left tap", "left").replace("both ears", "both");
+    let maps = maps.replace("engine room", "engine").replace("two horns", "horns");
     let expected = run(&electrodes, &maps);
     let changes: [(&str, Change); 9] = [
         ("comma", |text| text.replace('\t', ",")),
@@ -230,20 +230,20 @@ fn delimiters_line_ends_and_headers_do_not_matter() {
 
 #[test]
 fn maps_named_by_numbers_have_a_header_all_the_same() {
-    let (electrodes, maps) = (example("listening_electrodes.tsv"), example("listening_maps.tsv"));
+    let (electrodes, maps) = (example("watch_electrodes.tsv"), example("watch_maps.tsv"));
     let expected = run(&electrodes, &maps);
-    let numbered = maps.replacen("label\tleft tap\tboth ears\tglance\thum", "label\t0\t1\t2\t3", 1);
+    let numbered = maps.replacen("label\tlamp\tengine room\tswell\ttwo horns\tsalt\tfog", "label\t0\t1\t2\t3\t4\t5", 1);
     assert_ne!(numbered, maps);
     let report = run(&electrodes, &numbered);
     assert_eq!(report.electrodes, expected.electrodes);
     let names: Vec<&str> = fitted(&report).into_iter().map(|map| map.name.as_str()).collect();
-    assert_eq!(names, ["0", "1", "2", "3"]);
+    assert_eq!(names, ["0", "1", "2", "3", "4", "5"]);
     assert!(!report.notes.iter().any(|note| note.code.as_str() == "values-without-position"), "{:?}", report.notes);
 }
 
 #[test]
 fn more_columns_than_needed_do_not_matter_in_a_named_table() {
-    let (electrodes, maps) = (example("listening_electrodes.tsv"), example("listening_maps.tsv"));
+    let (electrodes, maps) = (example("watch_electrodes.tsv"), example("watch_maps.tsv"));
     let expected = run(&electrodes, &maps);
     let wider: String = electrodes
         .lines()

@@ -5,11 +5,11 @@ use sha2::{Digest, Sha256};
 use std::time::Duration;
 
 fn electrodes() -> String {
-    example("listening_electrodes.tsv")
+    example("watch_electrodes.tsv")
 }
 
 fn maps() -> String {
-    example("listening_maps.tsv")
+    example("watch_maps.tsv")
 }
 
 /// One map of the example, by the number of its column.
@@ -57,7 +57,7 @@ fn pasted_tables_are_answered(browser: Browser) {
     page.wait_for_answer();
     page.picture("answered");
     let report = page.download_report();
-    assert_eq!(report["electrodes"].as_array().unwrap().len(), 32);
+    assert_eq!(report["electrodes"].as_array().unwrap().len(), 70);
     let sentence = page.text("#sentence");
     assert!(tells_percent(&sentence, explained(&report, 0)), "{sentence} {}", explained(&report, 0));
 }
@@ -85,8 +85,8 @@ fn picked_files_are_answered(browser: Browser) {
     page.pick("#maps-file", &folder.write("maps.tsv", maps()));
     page.wait_for_answer();
     let report = page.download_report();
-    assert_eq!(report["electrodes"].as_array().unwrap().len(), 32);
-    assert_eq!(report["maps"].as_array().unwrap().len(), 4);
+    assert_eq!(report["electrodes"].as_array().unwrap().len(), 70);
+    assert_eq!(report["maps"].as_array().unwrap().len(), 6);
 }
 
 fn files_dropped_one_by_one_are_told_apart(browser: Browser) {
@@ -102,7 +102,7 @@ fn a_paste_outside_the_fields_is_answered(browser: Browser) {
     let page = Page::open(browser);
     page.paste("body", &maps());
     page.wait_for_answer();
-    assert_eq!(page.download_report()["maps"].as_array().unwrap().len(), 4);
+    assert_eq!(page.download_report()["maps"].as_array().unwrap().len(), 6);
 }
 
 fn the_download_is_the_report(browser: Browser) {
@@ -122,11 +122,11 @@ fn the_download_is_the_report(browser: Browser) {
         assert!(hashes.contains(&hash.as_str()), "{hashes:?} name {hash}");
     }
     let names: Vec<&str> = report["maps"].as_array().unwrap().iter().map(|map| map["name"].as_str().unwrap()).collect();
-    assert_eq!(names, ["left tap", "both ears", "glance", "hum"]);
-    // The invented source of the first map lies under C3 at eccentricity .72; noise of a tenth moves it by millimetres.
+    assert_eq!(names, ["lamp", "engine room", "swell", "two horns", "salt", "fog"]);
+    // The invented source of the first map lies under CP3 at eccentricity .80; the noise moves it by a millimetre.
     assert!(explained(&report, 0) > 0.97);
-    assert_eq!(report["maps"][0]["dipole"]["nearest_site"], "C3");
-    assert!(explained(&report, 3) < 0.6, "noise is not one dipole");
+    assert_eq!(report["maps"][0]["dipole"]["nearest_site"], "CP3");
+    assert!(explained(&report, 5) < 0.5, "two dozen sources are not one dipole");
 }
 
 fn the_table_and_its_copy_tell_the_same_numbers(browser: Browser) {
@@ -244,14 +244,14 @@ fn a_table_without_a_known_label_fails_by_name(browser: Browser) {
 
 fn the_last_of_two_quick_pastes_wins(browser: Browser) {
     let page = Page::open(browser);
-    page.paste("#maps-text", &one_map(4));
+    page.paste("#maps-text", &one_map(6));
     page.paste("#maps-text", &one_map(1));
     page.until("the later map", |page| {
-        page.state() == "answered" && page.download_report()["maps"][0]["name"] == "left tap"
+        page.state() == "answered" && page.download_report()["maps"][0]["name"] == "lamp"
     });
     // Nothing late may undo it.
     std::thread::sleep(Duration::from_millis(500));
-    assert_eq!(page.download_report()["maps"][0]["name"], "left tap");
+    assert_eq!(page.download_report()["maps"][0]["name"], "lamp");
 }
 
 /// Lets the fit of a map named `trapped` trap.
@@ -261,7 +261,7 @@ fn a_trap_is_a_failure_and_the_next_map_works(browser: Browser) {
     let folder = Folder::fresh("trap");
     let page = Page::load(browser, &Variant::delivered().before_worker(TRAP).write(&folder));
     page.wait_for("ready").unwrap();
-    page.paste("#maps-text", &one_map(1).replace("left tap", "trapped"));
+    page.paste("#maps-text", &one_map(1).replace("lamp", "trapped"));
     page.wait_for_failure();
     let details = page.value("return document.querySelector('#failure-details').textContent");
     let details = details.as_str().unwrap();
@@ -269,7 +269,7 @@ fn a_trap_is_a_failure_and_the_next_map_works(browser: Browser) {
     assert!(page.text("#failure-message").ends_with('.'));
     page.paste("#maps-text", &one_map(2));
     page.wait_for_answer();
-    assert_eq!(page.download_report()["maps"][0]["name"], "both ears");
+    assert_eq!(page.download_report()["maps"][0]["name"], "engine room");
 }
 
 fn a_blocked_script_is_noticed(browser: Browser) {
@@ -341,7 +341,7 @@ fn a_long_run_is_cancelled_and_the_page_goes_on(browser: Browser) {
     let page = Page::open(browser);
     let repeated = |line: &str| {
         let (label, values) = line.split_once('\t').unwrap();
-        format!("{label}{}\n", format!("\t{values}").repeat(4000))
+        format!("{label}{}\n", format!("\t{values}").repeat(3000))
     };
     let many: String = maps().lines().map(repeated).collect();
     page.drop_files(&[DroppedFile { name: "many.tsv", text: &many }]);
@@ -350,7 +350,7 @@ fn a_long_run_is_cancelled_and_the_page_goes_on(browser: Browser) {
     page.until("rest", |page| page.state() != "busy" && !page.visible("#cancel"));
     page.drop_files(&[DroppedFile { name: "maps.tsv", text: &maps() }]);
     page.until("the few maps", |page| {
-        page.state() == "answered" && page.download_report()["maps"].as_array().unwrap().len() == 4
+        page.state() == "answered" && page.download_report()["maps"].as_array().unwrap().len() == 6
     });
 }
 
@@ -368,7 +368,7 @@ fn it_works_in_a_frame_that_allows_scripts_and_downloads_alone(browser: Browser)
     page.wait_for_answer();
     let (_, _, bytes) = page.pixels("#map-measured");
     assert!(bytes.iter().any(|&byte| byte > 0));
-    assert_eq!(page.download_report()["maps"].as_array().unwrap().len(), 4);
+    assert_eq!(page.download_report()["maps"].as_array().unwrap().len(), 6);
 }
 
 fn caution_and_notices_are_shown(browser: Browser) {

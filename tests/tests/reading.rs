@@ -10,7 +10,7 @@ fn headless(table: &str) -> String {
 
 #[test]
 fn electrodes_and_maps_are_told_apart() {
-    let (electrodes, maps) = (example("listening_electrodes.tsv"), example("listening_maps.tsv"));
+    let (electrodes, maps) = (example("watch_electrodes.tsv"), example("watch_maps.tsv"));
     let labels: String = maps.lines().skip(1).map(|line| format!("{}\n", line.split('\t').next().unwrap())).collect();
     let three: String = maps.lines().map(|line| line.rsplit_once('\t').unwrap().0.to_owned() + "\n").collect();
     for (text, expected) in [

@@ -78,8 +78,8 @@ fn nothing_passes_the_policy_and_everything_without_it(browser: Browser) {
 /// The whole way through the delivered page, with every way out recorded by the browser itself.
 fn a_whole_visit_asks_for_nothing(browser: Browser) {
     let page = Page::open(browser);
-    page.paste("#electrodes-text", &example("listening_electrodes.tsv"));
-    page.paste("#maps-text", &example("listening_maps.tsv"));
+    page.paste("#electrodes-text", &example("watch_electrodes.tsv"));
+    page.paste("#maps-text", &example("watch_maps.tsv"));
     page.wait_for_answer();
     page.download_report();
     let asked = page.value("return performance.getEntriesByType('resource').map((entry) => entry.name).filter((name) => !/^(blob|data):/.test(name))");
