@@ -51,6 +51,8 @@ pub enum Value {
     Count(usize),
     /// Several words.
     List(Vec<String>),
+    /// Yes or no.
+    Flag(bool),
 }
 
 impl From<&str> for Value {
@@ -76,6 +78,90 @@ impl From<usize> for Value {
 impl From<Vec<String>> for Value {
     fn from(list: Vec<String>) -> Self {
         Self::List(list)
+    }
+}
+
+impl From<bool> for Value {
+    fn from(flag: bool) -> Self {
+        Self::Flag(flag)
+    }
+}
+
+/// How something came to be taken as it was.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, serde::Serialize)]
+#[serde(rename_all = "lowercase")]
+pub enum Origin {
+    /// The user said so.
+    Setting,
+    /// The content shows it.
+    Found,
+    /// A file says so.
+    Declared,
+    /// Nothing tells it; the usual was taken.
+    Assumed,
+}
+
+/// One inference that the user can change by a setting. Its sentence and the words for its options are made in
+/// [`crate::report`].
+#[derive(Clone, Debug, PartialEq)]
+pub struct Choice {
+    /// Name of the choice: the setting with dots between its keys, those of a file without `files` and its name.
+    pub setting: &'static str,
+    /// Where in the settings it is changed: keys from the outside in.
+    pub path: Vec<String>,
+    /// The file it is about.
+    pub file: Option<String>,
+    /// What is in force.
+    pub value: Value,
+    /// What can be chosen, with words of their own for options that are pieces of the input.
+    pub options: Vec<(Value, Option<String>)>,
+    /// How it came about.
+    pub from: Origin,
+    /// Further values for its sentence, by name.
+    pub values: Vec<(&'static str, Value)>,
+}
+
+impl Choice {
+    /// A choice of a setting.
+    pub fn new(setting: &'static str, from: Origin, value: impl Into<Value>) -> Self {
+        Self {
+            setting,
+            path: setting.split('.').map(String::from).collect(),
+            file: None,
+            value: value.into(),
+            options: Vec::new(),
+            from,
+            values: Vec::new(),
+        }
+    }
+
+    /// The same, about a file.
+    pub fn about(mut self, file: &str) -> Self {
+        self.file = Some(file.into());
+        self
+    }
+
+    /// The same, about a file and changed among the settings of that file.
+    pub fn of_file(mut self, file: &str) -> Self {
+        self.path = ["files", file].into_iter().chain(self.setting.split('.')).map(String::from).collect();
+        self.about(file)
+    }
+
+    /// The same, with options that have words for them.
+    pub fn options<T: Into<Value>>(mut self, options: impl IntoIterator<Item = T>) -> Self {
+        self.options.extend(options.into_iter().map(|option| (option.into(), None)));
+        self
+    }
+
+    /// The same, with one more value for its sentence.
+    pub fn with(mut self, name: &'static str, value: impl Into<Value>) -> Self {
+        self.values.push((name, value.into()));
+        self
+    }
+
+    /// The further value of this name.
+    pub fn value(&self, name: &str) -> Option<&Value> {
+        self.values.iter().find(|(n, _)| *n == name).map(|(_, value)| value)
     }
 }
 

@@ -31,6 +31,6 @@ pub mod report;
 mod analyse;
 
 pub use analyse::{Request, Study, analyse};
-pub use finding::{Code, Error, Finding, Place};
+pub use finding::{Choice, Code, Error, Finding, Origin, Place};
 pub use math::Vec3;
 pub use report::{MapReport, Program, Report, Settings};

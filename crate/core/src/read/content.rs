@@ -94,12 +94,23 @@ pub struct Cells {
     /// Line of each row in the file, from 1.
     lines: Vec<u32>,
     width: usize,
+    headed: bool,
 }
 
 impl Cells {
     /// An empty table of so many columns.
     pub fn new(width: usize) -> Self {
         Self { width, ..Self::default() }
+    }
+
+    /// The same, whose first row is known to hold the names of the columns.
+    pub fn headed(self) -> Self {
+        Self { headed: true, ..self }
+    }
+
+    /// Whether the first row is known to hold the names of the columns; otherwise it may or may not.
+    pub fn is_headed(&self) -> bool {
+        self.headed
     }
 
     /// Adds a row: missing fields are empty, further ones are dropped.

@@ -13,6 +13,7 @@ pub fn message(finding: &Finding) -> String {
         Some(Value::Number(number)) => significant(*number, 3),
         Some(Value::Count(count)) => count.to_string(),
         Some(Value::List(list)) => listed(list),
+        Some(Value::Flag(flag)) => if *flag { "yes" } else { "no" }.into(),
     };
     let place = finding.place.as_ref();
     let line = place.and_then(|p| p.line).unwrap_or(1);
