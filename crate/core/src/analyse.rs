@@ -198,17 +198,23 @@ impl Study {
     pub fn picture(&self, map: &FittedMap) -> Option<Picture> {
         let directions = || self.fitter.field().directions().to_vec();
         let spline = self.spline.get_or_init(|| Spline::new(directions())).as_ref()?;
-        let centre = self.placement.sphere.sphere.centre;
         let electrodes = self
             .placement
             .electrodes
             .iter()
-            .map(|e| (e.label.to_string(), (e.position_mm - centre).unit().unwrap_or_default(), e.used))
+            .map(|e| (e.label.to_string(), self.placement.canonical(e.position_mm).unit().unwrap_or_default(), e.used))
             .collect();
         let layers = [&map.measured[..], &map.projected, &map.residual];
         let limit = map.scale_limit();
         let position = Some(map.dipole.canonical_mm).filter(|position| position.norm() > CENTRE_MM);
-        Some(Picture::new(spline, electrodes, layers, limit, position, map.dipole.direction))
+        Some(Picture::new(
+            spline,
+            electrodes,
+            layers,
+            limit,
+            position,
+            self.placement.axes.to_canonical(map.dipole.direction),
+        ))
     }
 
     fn no_map(&self, index: usize) -> Error {
@@ -292,7 +298,7 @@ impl Study {
         let direction = found.moment.unit().unwrap_or_default();
         let unit = self.settings.map_unit;
         EquivalentDipole {
-            position_mm: sphere.centre + canonical_mm,
+            position_mm: self.placement.table(canonical_mm),
             canonical_mm,
             nearest_site: nearest_site(canonical_mm).filter(|_| distance > CENTRE_MM),
             side: match canonical_mm[0] {
@@ -300,7 +306,7 @@ impl Study {
                 x if x < -MIDLINE_MM => "left",
                 _ => "midline",
             },
-            direction,
+            direction: self.placement.axes.to_table(direction),
             strength: found.moment.norm() * unit.microvolts(),
             strength_unit: if unit == MapUnit::Relative { "relative" } else { "nAm" },
             eccentricity: found.position.norm() / self.shells.brain_ratio(),

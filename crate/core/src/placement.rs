@@ -2,7 +2,7 @@
 
 use crate::electrode::{Electrode, Label, standard_position};
 use crate::finding::{Code, Error, Finding, Place};
-use crate::head::{HEAD_RADII_MM, LengthUnit, STANDARD_RADIUS_MM, Sphere, SphereFit, spread};
+use crate::head::{Axes, HEAD_RADII_MM, LengthUnit, STANDARD_RADIUS_MM, Sphere, SphereFit, spread};
 use crate::map::Maps;
 use crate::math::Vec3;
 use std::collections::{HashMap, HashSet};
@@ -32,6 +32,8 @@ pub struct Placement {
     pub electrodes: Vec<Placed>,
     /// The scalp, in millimetres, with the deviations of the electrodes from it.
     pub sphere: SphereFit,
+    /// The way from the frame of the table to canonical axes.
+    pub axes: Axes,
     /// What was assumed and what did not match.
     pub notes: Vec<Finding>,
 }
@@ -66,9 +68,21 @@ impl Placement {
         self.electrodes.iter().filter(|electrode| electrode.used)
     }
 
-    /// Unit directions of the used electrodes from the centre: they are projected onto the sphere along its radius.
+    /// Unit directions of the used electrodes from the centre, in canonical axes: they are projected onto the sphere along
+    /// its radius.
     pub fn directions(&self) -> Vec<Vec3> {
-        directions(&self.electrodes, self.sphere.sphere.centre)
+        let directions = directions(&self.electrodes, self.sphere.sphere.centre);
+        directions.into_iter().map(|direction| self.axes.to_canonical(direction)).collect()
+    }
+
+    /// A position of the table's frame in canonical axes, from the centre of the sphere.
+    pub fn canonical(&self, position_mm: Vec3) -> Vec3 {
+        self.axes.to_canonical(position_mm - self.sphere.sphere.centre)
+    }
+
+    /// A canonical position in the frame of the table.
+    pub fn table(&self, canonical_mm: Vec3) -> Vec3 {
+        self.sphere.sphere.centre + self.axes.to_table(canonical_mm)
     }
 }
 
@@ -127,7 +141,7 @@ pub fn place(table: Option<&[Electrode]>, maps: &Maps, wishes: &Wishes) -> Resul
                 .with("label", worst.label.as_str()),
         );
     }
-    Ok(Placement { electrodes, sphere, notes })
+    Ok(Placement { electrodes, sphere, axes: Axes::CANONICAL, notes })
 }
 
 /// Electrodes with position and value, positions still in the unit of the table.

@@ -1,9 +1,11 @@
-//! The head: a sphere fitted to the electrodes and the concentric shells inside it.
+//! The head: the axes of its frame, a sphere fitted to the electrodes and the concentric shells inside it.
 
+mod axes;
 mod length;
 mod shells;
 mod sphere;
 
+pub use axes::{Axes, AxesName};
 pub use length::LengthUnit;
 pub use shells::{Shell, ShellSpec, Shells, Tissue};
 pub(crate) use sphere::spread;
