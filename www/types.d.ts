@@ -125,10 +125,36 @@ interface Picture {
   dipole: { x: number; y: number; dx: number; dy: number } | null;
 }
 
+/** An electrode of the picture in words; misfit orders them. */
+interface SheetElectrode {
+  label: string;
+  used: boolean;
+  misfit: number;
+  measured: string;
+  projected: string;
+  residual: string;
+  /** Of the left-over power in per cent; empty for one that is left out. */
+  share: string;
+}
+
+/** The dipole in the head: x right, y front, z up from the centre, the scalp at radius 1. */
+interface Figure {
+  shells: { tissue: string; radius: number }[];
+  /** In the order of the picture's electrodes. */
+  electrodes: number[][];
+  dipole: { position: number[]; direction: number[] };
+  /** The map's sign is arbitrary, so the dipole has no direction, only an axis. */
+  axis: boolean;
+}
+
+type HeadView = "above" | "behind" | "left" | "turned";
+
 interface Sheet {
   sentence: string;
   rows: SheetRow[];
-  alt: Record<MapRole, string>;
+  electrodes: SheetElectrode[];
+  figure: Figure;
+  alt: Record<MapRole | HeadView, string>;
   /** The ends of the colour scale in words: without a sign, and the unit. */
   scale: { limit: string; unit: string };
   picture: Picture;
@@ -223,6 +249,8 @@ type Phase = "loading" | "ready" | "busy" | "answered" | "failed";
 interface Answer {
   key: number;
   names: Record<InputKind, string | null>;
+  /** The settings it was computed with. */
+  settings: EngineSettings;
   preamble: InwardReport;
   count: number;
   maps: MapSummary[];
@@ -238,6 +266,8 @@ interface SessionState {
   settings: EngineSettings;
   answer: Answer | null;
   failure: Fault | null;
+  /** Label of the electrode that is pointed at, wherever on the page. */
+  pointed: string | null;
   progress: { done: number; total: number } | null;
   /** Maps still to be fitted were given up. */
   stopped: boolean;

@@ -11,6 +11,9 @@ import { pageFault } from "../text/faults.js";
 
 /** @typedef {ReturnType<typeof makeSession>} Session */
 
+/** @type {InputKind[]} */
+const KINDS = ["electrodes", "maps"];
+
 /** A map up to this number is kept in view when settings change. */
 const KEEP_CHOSEN = 512;
 
@@ -23,6 +26,7 @@ export function makeSession() {
       settings: { mapUnit: "relative" },
       answer: null,
       failure: null,
+      pointed: null,
       progress: null,
       stopped: false,
     }),
@@ -83,7 +87,7 @@ export function makeSession() {
       // The same tables under other settings: the same map stays in view, unless it would have to be waited for.
       const same = before !== null && before.count === count && before.names.maps === names.maps;
       const chosen = same && before.chosen < KEEP_CHOSEN ? before.chosen : 0;
-      await fitMaps({ key, names, preamble, count, maps: [], chosen, sheet: null });
+      await fitMaps({ key, names, settings, preamble, count, maps: [], chosen, sheet: null });
     } catch (fault) {
       if (pending === key) {
         pending = null;
@@ -157,7 +161,13 @@ export function makeSession() {
      * @param {Partial<Record<InputKind, Input | null>>} inputs
      */
     put(inputs) {
-      store.write({ inputs: { ...store.read().inputs, ...inputs } });
+      const { inputs: before, settings } = store.read();
+      // Electrodes were left out of the former table; typing goes on with the same one.
+      const other = KINDS.some((kind) => kind in inputs && inputs[kind]?.name !== before[kind]?.name);
+      store.write({
+        inputs: { ...before, ...inputs },
+        settings: other ? { ...settings, exclude: [] } : settings,
+      });
       ask();
     },
 
@@ -165,6 +175,23 @@ export function makeSession() {
     set(settings) {
       store.write({ settings: { ...store.read().settings, ...settings } });
       ask();
+    },
+
+    /** Leaves an electrode out or takes it back. @param {string} label @param {boolean} used */
+    use(label, used) {
+      const others = (store.read().settings.exclude ?? []).filter((one) => one !== label);
+      this.set({ exclude: used ? others : [...others, label] });
+    },
+
+    /** Back to the settings of the answer that is shown. */
+    restore() {
+      const { answer } = store.read();
+      if (answer !== null) this.set(answer.settings);
+    },
+
+    /** Marks an electrode everywhere. @param {string | null} label */
+    point(label) {
+      if (store.read().pointed !== label) store.write({ pointed: label });
     },
 
     /** Shows another map of the table. @param {number} index */
