@@ -1,10 +1,14 @@
 //! Electrode labels and the standard positions that belong to them.
 
 mod label;
+mod reading;
 mod standard;
 
 pub use label::Label;
-pub use standard::{StandardSite, nearest_site, standard_position, standard_sites};
+pub use reading::{Kind, Landmark, Other, Reading, Second};
+pub use standard::{
+    Grade, StandardSite, modern_name, nearest_site, site, standard_position, standard_site, standard_sites,
+};
 
 /// An electrode as a table gives it.
 #[derive(Clone, Debug, PartialEq)]

@@ -15,6 +15,11 @@ impl Axes {
     pub const CANONICAL: Self =
         Self { rows: [Vec3::new(1.0, 0.0, 0.0), Vec3::new(0.0, 1.0, 0.0), Vec3::new(0.0, 0.0, 1.0)] };
 
+    /// From the canonical x, y and z, which must be orthonormal.
+    pub(super) fn from_rows(rows: [Vec3; 3]) -> Self {
+        Self { rows }
+    }
+
     /// A direction or a distance from the centre, in canonical axes.
     pub fn to_canonical(&self, v: Vec3) -> Vec3 {
         // Not even the sign of a zero changes where nothing is turned.

@@ -2,11 +2,13 @@
 
 mod axes;
 mod length;
+mod orientation;
 mod shells;
 mod sphere;
 
 pub use axes::{Axes, AxesName};
 pub use length::LengthUnit;
+pub use orientation::{Landmarks, Orientation};
 pub use shells::{Shell, ShellSpec, Shells, Tissue};
 pub(crate) use sphere::spread;
 pub use sphere::{Sphere, SphereFit};
