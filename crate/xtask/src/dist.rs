@@ -1,6 +1,7 @@
 //! What is delivered: `inward.html` and `engine/inward.mjs`.
 
 use crate::bundle::Modules;
+use crate::examples::examples;
 use crate::engine::{gzip, module, page_script, worker_script};
 use crate::notices::notices;
 use crate::page::{LIMIT, Parts, page};
@@ -40,6 +41,7 @@ pub fn build(workspace: &Workspace) -> Result<Dist> {
         worker: &worker,
         wasm: &carried,
         notices: &notices(workspace)?,
+        examples: &examples(&workspace.root.join("example_maps"))?,
     };
     let page = page(&read(&www.join("index.html"))?, &parts)?;
     let module = module(&modules.join("engine/module.js")?, &compiled.glue, &carried);

@@ -5,6 +5,7 @@ mod bundle;
 mod digits;
 mod dist;
 mod engine;
+mod examples;
 mod lexer;
 mod licences;
 mod notices;

@@ -16,6 +16,8 @@ pub struct Parts<'a> {
     pub wasm: &'a str,
     /// The licence notices, as text.
     pub notices: &'a str,
+    /// The invented maps, as JSON.
+    pub examples: &'a str,
 }
 
 /// The largest page, in bytes, so that it stays a quick download and a small attachment.
@@ -32,6 +34,7 @@ pub fn page(template: &str, parts: &Parts) -> Result<String> {
         ("wasm", element("script", " type=\"text/plain\" id=\"wasm\"", parts.wasm)?),
         ("worker", element("script", " type=\"text/plain\" id=\"worker\"", parts.worker)?),
         ("notices", element("script", " type=\"text/plain\" id=\"notices-text\"", parts.notices)?),
+        ("examples", element("script", " type=\"application/json\" id=\"examples\"", parts.examples)?),
         ("script", script),
     ];
     let mut page = String::new();
@@ -88,9 +91,10 @@ fn element(tag: &str, attributes: &str, text: &str) -> Result<String> {
 mod tests {
     use super::*;
 
-    const PARTS: Parts = Parts { style: "a{}\n", script: "b();", worker: "c", wasm: "AA==", notices: "d" };
+    const PARTS: Parts = Parts { style: "a{}\n", script: "b();", worker: "c", wasm: "AA==", notices: "d", examples: "[]" };
     const TEMPLATE: &str = "<head>\n  <!-- inward:policy -->\n<!-- inward:style -->\n</head>\n\
-        <!-- inward:wasm -->\n<!-- inward:worker -->\n<!-- inward:notices -->\n<!-- inward:script -->\n";
+        <!-- inward:wasm -->\n<!-- inward:worker -->\n<!-- inward:notices -->\n<!-- inward:examples -->\n\
+        <!-- inward:script -->\n";
 
     #[test]
     fn the_policy_holds_the_digests_of_what_stands_between_the_tags() {
