@@ -1,8 +1,8 @@
 //! What is delivered: `inward.html` and `engine/inward.mjs`.
 
 use crate::bundle::Modules;
-use crate::examples::examples;
 use crate::engine::{gzip, module, page_script, worker_script};
+use crate::examples::examples;
 use crate::notices::notices;
 use crate::page::{LIMIT, Parts, page};
 use crate::wasm::{Compiled, compile};

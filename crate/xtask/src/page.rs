@@ -91,7 +91,8 @@ fn element(tag: &str, attributes: &str, text: &str) -> Result<String> {
 mod tests {
     use super::*;
 
-    const PARTS: Parts = Parts { style: "a{}\n", script: "b();", worker: "c", wasm: "AA==", notices: "d", examples: "[]" };
+    const PARTS: Parts =
+        Parts { style: "a{}\n", script: "b();", worker: "c", wasm: "AA==", notices: "d", examples: "[]" };
     const TEMPLATE: &str = "<head>\n  <!-- inward:policy -->\n<!-- inward:style -->\n</head>\n\
         <!-- inward:wasm -->\n<!-- inward:worker -->\n<!-- inward:notices -->\n<!-- inward:examples -->\n\
         <!-- inward:script -->\n";
