@@ -24,7 +24,7 @@ pub use mixture::Mixture;
 pub use multistart::MultiStart;
 pub use node::Node;
 pub use page::{DroppedFile, Page};
-pub use place::{data, dist_file, example, screenshot_file, tests_folder};
+pub use place::{data, dist_file, example, sample, samples, screenshot_file, tests_folder};
 pub use series::PlainSeries;
 pub use session::{CONTROL, Element, Session, TAB};
 pub use variant::Variant;

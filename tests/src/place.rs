@@ -39,3 +39,18 @@ pub fn screenshot_file(name: &str) -> PathBuf {
     fs::create_dir_all(&folder).expect("the folder of pictures can be made");
     folder.join(format!("{name}.png"))
 }
+
+/// Content of a small file as another program wrote it.
+pub fn sample(name: &str) -> Vec<u8> {
+    let file = tests_folder().join("data/samples").join(name);
+    fs::read(&file).unwrap_or_else(|why| panic!("{}: {why}", file.display()))
+}
+
+/// The names of all of them, in order.
+pub fn samples() -> Vec<String> {
+    let folder = fs::read_dir(tests_folder().join("data/samples")).expect("the samples are committed");
+    let mut names: Vec<String> =
+        folder.map(|entry| entry.expect("a folder can be listed").file_name().to_string_lossy().into_owned()).collect();
+    names.sort();
+    names
+}

@@ -1,8 +1,9 @@
 //! Every error and every note, brought about by an input that deserves it.
 use inward_core::head::ShellSpec;
+use inward_core::read::{Format, mat, npy, signature, zip};
 use inward_core::report::{ErrorReport, HeadSettings, hint};
 use inward_core::{Code, Error, MapReport, Report, Request, Settings, Study, Vec3, analyse};
-use inward_tests::{Draw, Electrodes, example};
+use inward_tests::{Draw, Electrodes, example, sample};
 use std::collections::BTreeSet;
 
 fn electrodes() -> String {
@@ -50,6 +51,17 @@ fn moved(change: impl Fn(usize, Vec3) -> Vec3) -> String {
         table += &format!("{}\t{}\t{}\t{}\n", row[0], p[0], p[1], p[2]);
     }
     table
+}
+
+/// The error of a binary file.
+fn refused(file: &[u8]) -> ErrorReport {
+    let outcome = match signature::container(file) {
+        Err(error) => return (&error).into(),
+        Ok(Some(Format::Npy)) => npy::read(file).err(),
+        Ok(Some(Format::Mat)) => mat::read(file).err(),
+        _ => zip::read(file).err(),
+    };
+    (&outcome.expect("an error")).into()
 }
 
 /// Every error that an input can cause, with the input that causes it.
@@ -151,6 +163,21 @@ fn errors() -> Vec<(&'static str, ErrorReport)> {
     let utf16: Vec<u8> = std::iter::once(0xfeff).chain(m.encode_utf16()).flat_map(u16::to_le_bytes).collect();
     all.push(("input-encoding", (&run(None, &utf16, plain()).unwrap_err()).into()));
     let study = Study::open(&Request { electrodes: None, maps: m.as_bytes(), settings: plain(), build: None }).unwrap();
+    for (code, name) in [
+        ("input-truncated", "cut.mat"),
+        ("input-damaged", "version_9.npy"),
+        ("input-hdf5", "level_7_3.mat"),
+        ("input-matlab-4", "level_4.mat"),
+        ("input-zip", "encrypted.zip"),
+        ("input-no-table", "picture.txt"),
+        ("array-type", "complex.npy"),
+        ("array-type", "only_sparse.mat"),
+        ("array-size", "billion_rows.npy"),
+        ("array-size", "three.npy"),
+        ("number-range", "infinite.npy"),
+    ] {
+        all.push((code, refused(&sample(name))));
+    }
     all.push(("map-index", (&study.fit(6).unwrap_err()).into()));
     all
 }
@@ -274,6 +301,8 @@ fn every_note_is_given_when_it_applies_and_not_otherwise() {
         assert!(!usual.contains(&(code, severity)), "{code}");
         met.insert(code);
     }
+    let (_, passed_over) = mat::read(&sample("passed_over.mat")).unwrap();
+    met.extend(passed_over.iter().map(|note| note.code.as_str()));
     let known: BTreeSet<&str> =
         Code::ALL.iter().filter(|code| hint(**code).is_empty()).map(|code| code.as_str()).collect();
     assert_eq!(met, known, "every note of the list is brought about");

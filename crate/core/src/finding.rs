@@ -194,6 +194,22 @@ codes! {
     InputTooLarge = "input-too-large",
     /// Error: an input that is not UTF-8 text.
     InputEncoding = "input-encoding",
+    /// Error: a binary file that ends too early.
+    InputTruncated = "input-truncated",
+    /// Error: a binary file with something that does not belong there.
+    InputDamaged = "input-damaged",
+    /// Error: an HDF5 file, also MATLAB 7.3.
+    InputHdf5 = "input-hdf5",
+    /// Error: a MATLAB file of level 4.
+    InputMatlab4 = "input-matlab-4",
+    /// Error: an archive that cannot be unpacked.
+    InputZip = "input-zip",
+    /// Error: a picture, a document or another file without a table.
+    InputNoTable = "input-no-table",
+    /// Error: an array of what is neither real numbers nor words.
+    ArrayType = "array-type",
+    /// Error: an array beyond the limits.
+    ArraySize = "array-size",
     /// Error: the table lacks the columns it needs.
     TableColumns = "table-columns",
     /// Error: a line has more or fewer fields than the others.
@@ -232,6 +248,8 @@ codes! {
     MapIndex = "map-index",
     /// Note: x right, y front, z up was assumed.
     AxesAssumed = "axes-assumed",
+    /// Note: parts of a file that are no tables.
+    PartPassedOver = "part-passed-over",
     /// Note: a first line without a usual name was taken as names of the columns.
     HeaderAssumed = "header-assumed",
     /// Note: the length unit was recognised by the size of the head.

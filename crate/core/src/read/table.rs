@@ -1,4 +1,4 @@
-use super::MOST_ELECTRODES;
+use super::{MOST_ELECTRODES, SIZES};
 use crate::electrode::{Label, standard_position};
 use crate::finding::{Code, Error, Finding, Place};
 use std::borrow::Cow;
@@ -142,9 +142,6 @@ pub(super) fn number(field: &str) -> Option<f64> {
     let plain = field.bytes().all(|b| b.is_ascii_digit() || b"+-.eE".contains(&b));
     field.parse().ok().filter(|_| plain)
 }
-
-/// Sizes that numbers may have: their squares stay inside the range of `f64`.
-const SIZES: core::ops::RangeInclusive<f64> = 1e-100..=1e100;
 
 /// The number that a field must hold, or the error at its place.
 pub(super) fn expect_number(field: &str, place: impl FnOnce() -> Place) -> Result<f64, Error> {

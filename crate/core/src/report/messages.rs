@@ -7,7 +7,7 @@ use crate::finding::{Code, Finding, Place, Value};
 pub fn message(finding: &Finding) -> String {
     let value = |name: &str| match finding.value(name) {
         None => String::new(),
-        Some(Value::Text(text)) if name == "why" || name == "lacks" => reason(text).to_owned(),
+        Some(Value::Text(text)) if ["why", "lacks", "what"].contains(&name) => reason(text).to_owned(),
         Some(Value::Text(text)) if name == "problem" => text.clone(),
         Some(Value::Text(text)) => clipped(text),
         Some(Value::Number(number)) => significant(*number, 3),
@@ -17,6 +17,7 @@ pub fn message(finding: &Finding) -> String {
     };
     let place = finding.place.as_ref();
     let line = place.and_then(|p| p.line).unwrap_or(1);
+    let byte = place.and_then(|p| p.byte).unwrap_or(1);
     let input = input_name(place);
     match finding.code {
         Code::SettingsUnknown => format!("A setting was not understood: {}.", value("problem")),
@@ -25,13 +26,50 @@ pub fn message(finding: &Finding) -> String {
             _ => format!("The head cannot be computed: {}{}.", value("why"), value("label")),
         },
         Code::InputEmpty => format!("The {input} holds nothing."),
+        Code::InputTooLarge if finding.value("what").is_some() => {
+            format!("The {input} {} more than {} MiB, the most that is read.", value("what"), value("most_mib"))
+        }
         Code::InputTooLarge => {
             format!("The {input} is larger than {} MiB, the most that is read.", value("most_mib"))
         }
         Code::InputEncoding => {
-            let byte = place.and_then(|p| p.byte).unwrap_or(1);
             format!("The {input} is not UTF-8 text: byte {byte} does not belong there.")
         }
+        Code::InputTruncated => format!(
+            "The {input} ends at byte {byte}, in {}: at least {} more bytes belong there.",
+            value("what"),
+            value("missing")
+        ),
+        Code::InputDamaged => {
+            format!("Byte {byte} of the {input}: found “{}”, expected {}.", value("found"), value("lacks"))
+        }
+        Code::InputHdf5 => {
+            format!("The {input} is an HDF5 file, as MATLAB writes them with -v7.3; these are not read.")
+        }
+        Code::InputMatlab4 => format!("The {input} is a MATLAB file of level 4; these are not read."),
+        Code::InputZip if finding.value("label").is_some() => {
+            format!("“{}” in the {input} (byte {byte}) cannot be unpacked: {}.", value("label"), value("why"))
+        }
+        Code::InputZip => format!("The {input} cannot be unpacked (byte {byte}): {}.", value("why")),
+        Code::InputNoTable => format!("The {input} is {}, not a table.", value("what")),
+        Code::ArrayType if finding.value("labels").is_some() => {
+            format!(
+                "Nothing in the {input} is a table of real numbers or a list of words: {} ({}).",
+                value("labels"),
+                value("why")
+            )
+        }
+        Code::ArrayType => format!("The array holds “{}” (byte {byte}): {}.", value("found"), value("why")),
+        Code::ArraySize if finding.value("dimensions").is_some() => {
+            format!("The array has {} dimensions (byte {byte}); one or two are read.", value("dimensions"))
+        }
+        Code::ArraySize => format!(
+            "The array is said to hold {} × {} entries (byte {byte}); at most {} × {} are read, either way round.",
+            value("rows"),
+            value("columns"),
+            value("most_electrodes"),
+            value("most_maps")
+        ),
         Code::TableColumns => format!("The {input} lacks {} (line {line}).", value("lacks")),
         Code::TableRagged => format!(
             "Line {line} of the {input} has {} fields, the first line has {}.",
@@ -41,6 +79,10 @@ pub fn message(finding: &Finding) -> String {
         Code::NumberExpected => format!(
             "Line {line}, column {} of the {input}: “{}” is not a number.",
             place.and_then(|p| p.column).unwrap_or(1),
+            value("found")
+        ),
+        Code::NumberRange if place.is_some_and(|p| p.line.is_none()) => format!(
+            "Byte {byte} of the {input}: {} is too large or too small; numbers from 1e-100 to 1e100 are read.",
             value("found")
         ),
         Code::NumberRange => format!(
@@ -97,6 +139,7 @@ pub fn message(finding: &Finding) -> String {
             format!("The map “{}” has no value at {}, where other maps have one.", value("map"), value("labels"))
         }
         Code::MapIndex => format!("There is no map {}; the table holds {}.", value("index"), value("count")),
+        Code::PartPassedOver => format!("Passed over in the {input}: {} ({}).", value("labels"), value("why")),
         Code::AxesAssumed => {
             "Axes were assumed: x to the right, y to the front, z up. Nothing in the table was used to check this."
                 .into()
@@ -158,6 +201,20 @@ pub fn hint(code: Code) -> &'static str {
         Code::InputEmpty => "Give a table with a label and a value or a position in each line.",
         Code::InputTooLarge => "Split the table, or leave out columns that are not needed.",
         Code::InputEncoding => "Save the table as text in UTF-8 and give it again.",
+        Code::InputTruncated => "Copy or export the file again; this one is not whole.",
+        Code::InputDamaged => "Export the file again, or write the table as text.",
+        Code::InputHdf5 => "In MATLAB, save with save('name.mat', 'variable', '-v7'); or write the table as text.",
+        Code::InputMatlab4 => "In MATLAB, load the file and save with '-v7'; or write the table as text.",
+        Code::InputZip => "Unpack the archive yourself and give the files in it.",
+        Code::InputNoTable => {
+            "Give tables as text (from a spreadsheet: save as CSV), JSON, .npy or .mat; of a recording, export the maps."
+        }
+        Code::ArrayType => {
+            "Save plain matrices of real numbers, and labels as a list of words (in MATLAB: full(), real(), cellstr(); in NumPy: astype(float), astype(str))."
+        }
+        Code::ArraySize => {
+            "Save a matrix of electrodes and maps, without further dimensions and without the recording itself."
+        }
         Code::TableColumns => {
             "Electrodes need the columns label, x, y, z, or labels alone, one in each line; maps need a label and at least one value in each line. A first line with such names settles which column is which."
         }
@@ -222,6 +279,56 @@ fn reason(key: &str) -> &'static str {
         "label-column" => "a column of labels",
         "coordinates" => "three columns of coordinates x, y, z",
         "label" => "a label",
+        "unpacked" => "unpacks to",
+        "npy-magic" => "the beginning of a .npy file",
+        "npy-version" => "version 1, 2 or 3 of the format",
+        "npy-header" => "the header of the array",
+        "npy-header-end" => "the end of the header",
+        "npy-keys" => "a header with 'descr', 'fortran_order' and 'shape'",
+        "npy-key" => "'descr', 'fortran_order' and 'shape', each once",
+        "npy-mark" => "a header such as {'descr': '<f8', 'fortran_order': False, 'shape': (71, 3), }",
+        "npy-quote" => "a word in quotes",
+        "npy-truth" => "True or False",
+        "npy-shape" => "a shape such as (71, 3)",
+        "npy-type" => "a type of numbers with its order of bytes such as '<f8'",
+        "npy-numbers" => "the entries of the array",
+        "npy-end" => "nothing after the last entry",
+        "mat-header" => "the header of the file",
+        "mat-endian" => "the version and the mark of a level-5 file",
+        "mat-variable" => "a variable",
+        "mat-element" => "a variable, plain or packed",
+        "mat-inside" => "a variable whose parts agree with its size",
+        "packed" => "sound packed data",
+        "zip-directory" => "the directory of the archive",
+        "zip-entry" => "an entry of the archive's directory",
+        "zip-file" => "a file where the directory says it is",
+        "zip-size" => "as many bytes as the directory says",
+        "zip-checksum" => "content that agrees with its checksum",
+        "zip-encrypted" => "it is encrypted",
+        "zip-64" => "it has sizes of 64 bits",
+        "zip-divided" => "it is divided over several files",
+        "zip-many" => "it holds more than 1,024 files",
+        "zip-method" => "it is packed by another method than deflate",
+        "picture" => "a picture",
+        "pdf" => "a PDF document",
+        "office" => "a spreadsheet or another office document",
+        "packed-file" => "a packed file of a kind that is not read",
+        "database" => "a database",
+        "recording" => "a recording",
+        "binary" => "a binary file of an unknown kind",
+        "archive" => "an archive within an archive",
+        "fields" => "records with named fields are not read",
+        "kind" => "this kind of entry is not read",
+        "complex" => "complex numbers are not read",
+        "objects" => "objects are not read",
+        "object" => "an object; cellstr() makes words of a string array, table2struct() a structure of a table",
+        "sparse" => "sparse; full() makes a plain matrix of it",
+        "function" => "a function handle",
+        "dimensions" => "more than two dimensions",
+        "size" => "larger than 512 × 65,536",
+        "range" => "holds numbers that are infinite or beyond 1e-100 to 1e100",
+        "nested" => "more than four levels deep",
+        "mixed" => "neither words, nor numbers, nor vectors of one length",
         _ => {
             debug_assert!(false, "no reason for {key}");
             ""
