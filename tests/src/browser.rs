@@ -74,6 +74,8 @@ fn firefox(profile: &Path, downloads: &Path) -> (Driver, Value) {
         "0".into(),
         "--profile-root".into(),
         profile.display().to_string(),
+        // Dark, forced colours and the like are set from the window around the page.
+        "--allow-system-access".into(),
     ];
     let driver = Driver::start(&server, &arguments, "Listening on 127.0.0.1:").unwrap();
     let capabilities = json!({

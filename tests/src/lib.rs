@@ -1,4 +1,5 @@
 //! Shared helpers of the checks: browsers, the page, Node, outside values, invented maps.
+mod bitmap;
 mod browser;
 mod canary;
 mod draw;
@@ -9,12 +10,15 @@ mod mixture;
 mod multistart;
 mod node;
 mod page;
+mod paper;
 mod place;
 mod program;
 mod series;
 mod session;
+mod surroundings;
 mod variant;
 
+pub use bitmap::Bitmap;
 pub use browser::Browser;
 pub use canary::Canary;
 pub use draw::Draw;
@@ -24,9 +28,11 @@ pub use mixture::Mixture;
 pub use multistart::MultiStart;
 pub use node::Node;
 pub use page::{DroppedFile, Page};
+pub use paper::Paper;
 pub use place::{data, dist_file, example, sample, samples, screenshot_file, tests_folder};
 pub use series::PlainSeries;
 pub use session::{CONTROL, Element, Session, TAB};
+pub use surroundings::Surroundings;
 pub use variant::Variant;
 
 /// Text that went wrong on the way to a browser, a driver or Node.

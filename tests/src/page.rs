@@ -1,7 +1,9 @@
 //! The page in a browser, by what a person can do with it.
+use crate::bitmap::Bitmap;
 use crate::browser::Browser;
 use crate::place::{dist_file, screenshot_file};
-use crate::session::{CONTROL, Element, Session};
+use crate::session::{CONTROL, Element, Session, TAB};
+use crate::surroundings::Surroundings;
 use crate::{Outcome, tests_folder};
 use serde_json::{Value, json};
 use std::path::Path;
@@ -121,6 +123,52 @@ impl Page {
         self.ask(script, &[json!(selector)]) == json!(true)
     }
 
+    /// Whether an element is there at all.
+    pub fn exists(&self, selector: &str) -> bool {
+        self.ask("return document.querySelector(arguments[0]) !== null", &[json!(selector)]) == json!(true)
+    }
+
+    /// An attribute of an element, empty where it has none.
+    pub fn attribute(&self, selector: &str, name: &str) -> String {
+        let script = "return document.querySelector(arguments[0]).getAttribute(arguments[1]) ?? ''";
+        self.ask(script, &[json!(selector), json!(name)]).as_str().unwrap_or_default().into()
+    }
+
+    /// Presses keys where the focus is.
+    pub fn press(&self, keys: &str) {
+        self.session.press(keys).unwrap();
+    }
+
+    /// Goes to an element by the tabulator key alone, as a person without a mouse does.
+    pub fn tab_to(&self, selector: &str) {
+        let script = "return document.activeElement?.matches(arguments[0]) ?? false";
+        for _ in 0..250 {
+            if self.ask(script, &[json!(selector)]) == json!(true) {
+                return;
+            }
+            self.press(&TAB.to_string());
+        }
+        panic!("{}: the tabulator key never reaches {selector}", self.browser.name());
+    }
+
+    /// Gives an element the focus.
+    pub fn focus(&self, selector: &str) {
+        self.ask("document.querySelector(arguments[0]).focus()", &[json!(selector)]);
+    }
+
+    /// Replaces what stands in a field by typing, and leaves it.
+    pub fn fill(&self, selector: &str, text: &str) {
+        self.ask("const e = document.querySelector(arguments[0]); e.focus(); e.select()", &[json!(selector)]);
+        self.press(&format!("{text}{TAB}"));
+    }
+
+    /// Texts of all elements that a selector finds.
+    pub fn texts(&self, selector: &str) -> Vec<String> {
+        let script = "return [...document.querySelectorAll(arguments[0])].map((e) => e.innerText.trim())";
+        let found = self.ask(script, &[json!(selector)]);
+        found.as_array().expect("a list").iter().map(|text| text.as_str().unwrap_or_default().into()).collect()
+    }
+
     /// Clicks on an element.
     pub fn click(&self, selector: &str) {
         self.session.click(&self.find(selector)).unwrap_or_else(|why| panic!("{selector}: {why}"));
@@ -182,8 +230,8 @@ impl Page {
         self.ask(script, &[json!(files)]);
     }
 
-    /// Colours of a canvas: width, height and the red, green, blue and alpha bytes row by row.
-    pub fn pixels(&self, selector: &str) -> (usize, usize, Vec<u8>) {
+    /// What a canvas holds.
+    pub fn pixels(&self, selector: &str) -> Bitmap {
         let script = "\
             const canvas = document.querySelector(arguments[0]);\
             const { width, height } = canvas;\
@@ -193,7 +241,31 @@ impl Page {
         let found = self.ask(script, &[json!(selector)]);
         let bytes =
             base64::Engine::decode(&base64::engine::general_purpose::STANDARD, found[2].as_str().unwrap()).unwrap();
-        (found[0].as_u64().unwrap() as usize, found[1].as_u64().unwrap() as usize, bytes)
+        Bitmap { width: found[0].as_u64().unwrap() as usize, height: found[1].as_u64().unwrap() as usize, bytes }
+    }
+
+    /// From now on every word written on a canvas is taken down, with its place in pixels of the bitmap.
+    pub fn take_down_words(&self) {
+        self.value(
+            "window.written = [];\
+             const write = CanvasRenderingContext2D.prototype.fillText;\
+             CanvasRenderingContext2D.prototype.fillText = function (text, x, y, ...rest) {\
+               const { a, b, c, d, e, f } = this.getTransform();\
+               window.written.push([this.canvas.id, text, a * x + c * y + e, b * x + d * y + f]);\
+               return write.call(this, text, x, y, ...rest);\
+             };",
+        );
+    }
+
+    /// Words written on a canvas since the last call, with their places.
+    pub fn written_on(&self, id: &str) -> Vec<(String, f64, f64)> {
+        let script = "const mine = window.written.filter(([id]) => id === arguments[0]);\
+                      window.written = window.written.filter(([id]) => id !== arguments[0]);\
+                      return mine";
+        let found = self.ask(script, &[json!(id)]);
+        let number = |value: &Value| value.as_f64().expect("a number");
+        let words = found.as_array().expect("a list").iter();
+        words.map(|word| (word[1].as_str().unwrap_or_default().into(), number(&word[2]), number(&word[3]))).collect()
     }
 
     /// Downloads the report by its button and reads the file that lands on disk.
@@ -229,6 +301,18 @@ impl Page {
             .iter()
             .map(|line| line.as_str().unwrap_or_default().into())
             .collect()
+    }
+
+    /// Sets what the person's device asks for.
+    pub fn surround(&self, surroundings: Surroundings) {
+        surroundings.set(self.browser, &self.session).unwrap_or_else(|why| panic!("{}: {why}", self.browser.name()));
+        // Two frames: the page hears of it and has painted.
+        self.settle();
+    }
+
+    /// Waits until what was asked for before has been painted.
+    pub fn settle(&self) {
+        self.value("return new Promise((done) => requestAnimationFrame(() => requestAnimationFrame(() => setTimeout(done, 30))))");
     }
 
     /// Keeps a picture of the window for looking at.

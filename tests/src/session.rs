@@ -115,11 +115,52 @@ impl Session {
         self.post("/execute/sync", &json!({ "script": script, "args": arguments }))
     }
 
+    /// Moves the mouse to a place given in CSS pixels from the middle of an element, and leaves it there.
+    pub fn hover(&self, element: &Element, x: i64, y: i64) -> Outcome<()> {
+        self.mouse(element, x, y, &[])
+    }
+
+    /// A click at a place given in CSS pixels from the middle of an element.
+    pub fn click_at(&self, element: &Element, x: i64, y: i64) -> Outcome<()> {
+        self.mouse(element, x, y, &["pointerDown", "pointerUp"])
+    }
+
+    fn mouse(&self, element: &Element, x: i64, y: i64, then: &[&str]) -> Outcome<()> {
+        let start = json!({ "type": "pointerMove", "duration": 0, "origin": element.argument(), "x": x, "y": y });
+        let then = then.iter().map(|kind| json!({ "type": kind, "button": 0 }));
+        let actions: Vec<Value> = std::iter::once(start).chain(then).collect();
+        let mouse =
+            json!({ "type": "pointer", "id": "mouse", "parameters": { "pointerType": "mouse" }, "actions": actions });
+        self.post("/actions", &json!({ "actions": [mouse] })).map(|_| ())
+    }
+
+    /// The window as a picture, the bytes of a PNG.
+    pub fn screenshot(&self) -> Outcome<Vec<u8>> {
+        decoded(&self.get("/screenshot")?)
+    }
+
     /// Writes a picture of the window to a file.
     pub fn picture(&self, file: &Path) -> Outcome<()> {
-        let text = self.get("/screenshot")?;
-        let bytes = STANDARD.decode(text.as_str().unwrap_or_default()).map_err(|why| why.to_string())?;
-        std::fs::write(file, bytes).map_err(|why| format!("{}: {why}", file.display()))
+        std::fs::write(file, self.screenshot()?).map_err(|why| format!("{}: {why}", file.display()))
+    }
+
+    /// The document printed on paper of this size in centimetres, the bytes of a PDF.
+    pub fn print(&self, width: f64, height: f64) -> Outcome<Vec<u8>> {
+        let page = json!({ "width": width, "height": height });
+        decoded(&self.post("/print", &json!({ "page": page, "background": false, "shrinkToFit": true }))?)
+    }
+
+    /// A command of Chromium's own protocol.
+    pub fn chromium_command(&self, command: &str, parameters: &Value) -> Outcome<()> {
+        self.post("/goog/cdp/execute", &json!({ "cmd": command, "params": parameters })).map(|_| ())
+    }
+
+    /// Runs a script in Firefox's own window, around the page.
+    pub fn run_in_firefox(&self, script: &str) -> Outcome<Value> {
+        self.post("/moz/context", &json!({ "context": "chrome" }))?;
+        let outcome = self.run(script, &[]);
+        self.post("/moz/context", &json!({ "context": "content" }))?;
+        outcome
     }
 
     /// Goes into a frame of the document: what follows happens there.
@@ -132,6 +173,10 @@ impl Session {
     pub fn resize(&self, width: u32, height: u32) -> Outcome<()> {
         self.post("/window/rect", &json!({ "width": width, "height": height })).map(|_| ())
     }
+}
+
+fn decoded(text: &Value) -> Outcome<Vec<u8>> {
+    STANDARD.decode(text.as_str().unwrap_or_default()).map_err(|why| why.to_string())
 }
 
 fn stroke(kind: &str, key: char) -> Value {

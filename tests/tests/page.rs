@@ -176,25 +176,19 @@ fn pictures_are_painted_and_nothing_beyond_the_electrodes(browser: Browser) {
     page.wait_for_answer();
     page.picture("half");
     for canvas in ["#map-measured", "#map-projected"] {
-        let (width, height, bytes) = page.pixels(canvas);
+        let map = page.pixels(canvas);
+        let (width, height) = (map.width, map.height);
         assert!(width > 100 && height > 100);
-        // Coloured: the strongest and weakest of red, green and blue lie far apart, which no grey line does.
-        let coloured = |x: usize, y: usize| {
-            let pixel = &bytes[4 * (y * width + x)..][..4];
-            let (low, high) = (pixel[..3].iter().min().unwrap(), pixel[..3].iter().max().unwrap());
-            pixel[3] > 0 && high - low > 30
-        };
-        let count =
-            |from: usize, to: usize| (from..to).map(|x| (0..height).filter(|&y| coloured(x, y)).count()).sum::<usize>();
+        let coloured = |x: usize| (0..height).filter(|&y| map.coloured(x as f64, y as f64)).count();
         // The first electrodes stand 0.15 of the radius right of the middle.
-        let (left, right) = (count(0, width / 2), count(width / 2, width));
+        let left = (0..width / 2).map(coloured).sum::<usize>();
+        let right = (width / 2..width).map(coloured).sum::<usize>();
         assert!(right > width * height / 20, "{canvas}: {right} coloured pixels on the right");
         assert!(
             left < right / 50,
             "{canvas}: {left} coloured pixels on the left, where no electrode is, {right} on the right"
         );
-        let colours: std::collections::HashSet<&[u8]> = bytes.chunks(4).collect();
-        assert!(colours.len() > 30, "{canvas}: {} colours", colours.len());
+        assert!(map.colours() > 30, "{canvas}: {} colours", map.colours());
     }
 }
 
@@ -202,8 +196,8 @@ fn the_left_over_map_differs_from_the_measured_one(browser: Browser) {
     let page = answered(browser);
     let [measured, projected, residual] =
         ["#map-measured", "#map-projected", "#map-residual"].map(|canvas| page.pixels(canvas));
-    assert_ne!(measured.2, projected.2);
-    assert_ne!(measured.2, residual.2);
+    assert_ne!(measured.bytes, projected.bytes);
+    assert_ne!(measured.bytes, residual.bytes);
     for canvas in ["#map-measured", "#map-projected", "#map-residual"] {
         let words =
             page.ask("return document.querySelector(arguments[0]).getAttribute('aria-label')", &[json!(canvas)]);
@@ -366,8 +360,7 @@ fn it_works_in_a_frame_that_allows_scripts_and_downloads_alone(browser: Browser)
     page.wait_for("ready").unwrap();
     page.drop_files(&[DroppedFile { name: "maps.tsv", text: &maps() }]);
     page.wait_for_answer();
-    let (_, _, bytes) = page.pixels("#map-measured");
-    assert!(bytes.iter().any(|&byte| byte > 0));
+    assert!(page.pixels("#map-measured").bytes.iter().any(|&byte| byte > 0));
     assert_eq!(page.download_report()["maps"].as_array().unwrap().len(), 6);
 }
 
