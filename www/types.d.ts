@@ -8,11 +8,51 @@ type InwardContent = string | Uint8Array;
 
 type MapUnit = "uV" | "V" | "relative";
 
+/** A shell as it is stated: outer radius over the scalp's, conductivity in S/m. */
+interface ShellSpec {
+  tissue: string;
+  ratio: number;
+  conductivity: number;
+}
+
+/** What is left out, or null, is fitted to the electrodes or standard. */
+interface HeadSettings {
+  shells?: ShellSpec[] | null;
+  centre_mm?: number[] | null;
+  radius_mm?: number | null;
+}
+
+/** A published head to choose; the first of the catalogue is the default. */
+interface CatalogueHead {
+  name: string;
+  title: string;
+  source: string;
+  shells: ShellSpec[];
+}
+
+interface ReportHead {
+  /** Name in the catalogue, where the shells are exactly one of its. */
+  name: string | null;
+  centre_mm: number[];
+  centre_is_fitted: boolean;
+  radius_mm: number;
+  radius_is_fitted: boolean;
+  fit_rms_mm: number;
+  fit_max_mm: number;
+  shells: { tissue: string; outer_radius_mm: number; conductivity_s_per_m: number }[];
+}
+
 /** Every setting is optional; the engine refuses what it does not know. */
 interface EngineSettings {
   mapUnit?: MapUnit;
   exclude?: string[];
-  head?: object;
+  head?: HeadSettings | null;
+  /** Maps, counted from 0, whose sign is turned. */
+  flip?: number[];
+  /** Whether the maps' sign means something. */
+  polarity?: "arbitrary" | "declared";
+  /** Standard deviation of each map's activation, by the number of the map. */
+  activationSd?: (number | null)[];
   assess?: string[];
 }
 
@@ -75,7 +115,7 @@ interface InwardReport {
   program: Program;
   inputs: { name: string; sha256: string }[];
   settings: EngineSettings;
-  head: object;
+  head: ReportHead;
   electrodes: { label: string; position_mm: number[]; used: boolean }[];
   maps: ReportMap[];
   notes: ReportNote[];
@@ -125,15 +165,19 @@ interface Picture {
   dipole: { x: number; y: number; dx: number; dy: number } | null;
 }
 
-/** An electrode of the picture in words; misfit orders them. */
+/**
+ * An electrode with what the map has there, what the dipole predicts and the difference, as text. What is left out is
+ * referred to the mean of the used ones.
+ */
 interface SheetElectrode {
   label: string;
   used: boolean;
+  /** How far the prediction is off, without sign, to order by. */
   misfit: number;
   measured: string;
   projected: string;
   residual: string;
-  /** Of the left-over power in per cent; empty for one that is left out. */
+  /** Share of the left-over power, in percent without the sign; empty for one that is left out. */
   share: string;
 }
 
@@ -143,7 +187,7 @@ interface Figure {
   /** In the order of the picture's electrodes. */
   electrodes: number[][];
   dipole: { position: number[]; direction: number[] };
-  /** The map's sign is arbitrary, so the dipole has no direction, only an axis. */
+  /** The map's sign is arbitrary, so that the dipole has no direction, only an axis. */
   axis: boolean;
 }
 
@@ -152,6 +196,8 @@ type HeadView = "above" | "behind" | "left" | "turned";
 interface Sheet {
   sentence: string;
   rows: SheetRow[];
+  head: { title: string; source: string; rows: SheetRow[] };
+  /** In the order of the picture's electrodes. */
   electrodes: SheetElectrode[];
   figure: Figure;
   alt: Record<MapRole | HeadView, string>;
@@ -163,7 +209,7 @@ interface Sheet {
 /** A study as the glue exports it. */
 interface GlueStudy {
   readonly count: number;
-  head(): object;
+  head(): ReportHead;
   electrodes(): object[];
   notes(): ReportNote[];
   preamble(): InwardReport;
@@ -172,6 +218,8 @@ interface GlueStudy {
   fitWithin(first: number, milliseconds: number): ReportMap[];
   assess(index: number, what: string[]): object;
   sheet(index: number): Sheet;
+  /** The same tables under other settings; nothing is read again. */
+  with(settings: EngineSettings): GlueStudy;
   free(): void;
 }
 
@@ -181,6 +229,7 @@ interface Glue {
   open(request: EngineRequest): GlueStudy;
   /** What a table is, by its content. */
   kindOf(content: InwardContent): InputKind;
+  heads(): CatalogueHead[];
   program(): Program;
 }
 
@@ -192,12 +241,14 @@ declare const WASM_GZIP_BASE64: string;
 
 /** A study as scripts see it; what stands after `close` is for the page's worker. */
 interface Study {
-  readonly head: object;
+  readonly head: ReportHead;
   readonly electrodes: object[];
   readonly notes: ReportNote[];
   readonly count: number;
   fit(index: number): ReportMap;
   assess(index: number, what: string[]): object;
+  /** The same tables under other settings; nothing is read again. Both studies go on and are closed one by one. */
+  with(settings: EngineSettings): Study;
   close(): void;
   fitWithin(first: number, milliseconds: number): ReportMap[];
   preamble(): InwardReport;
@@ -205,6 +256,8 @@ interface Study {
 }
 
 interface Engine {
+  /** Published heads to choose from. */
+  readonly heads: CatalogueHead[];
   analyse(request: EngineRequest): InwardReport;
   open(request: EngineRequest): Study;
   kindOf(content: InwardContent): InputKind;
@@ -220,14 +273,21 @@ interface FitProgress {
   maps: MapSummary[];
 }
 
+/** The tables of a study that the worker holds, under other settings. */
+interface ChangedRequest {
+  from: number;
+  settings: EngineSettings;
+}
+
 /** Messages to the worker. `request` rides along with the first task that carries the study's key. */
 type WorkerTask =
   | { kind: "program" }
+  | { kind: "heads" }
   | { kind: "kindOf"; content: InwardContent }
-  | { kind: "open"; key: number; request?: EngineRequest }
-  | { kind: "fitAll"; key: number; request?: EngineRequest }
-  | { kind: "sheet"; key: number; request?: EngineRequest; index: number }
-  | { kind: "report"; key: number; request?: EngineRequest }
+  | { kind: "open"; key: number; request?: EngineRequest | ChangedRequest }
+  | { kind: "fitAll"; key: number; request?: EngineRequest | ChangedRequest }
+  | { kind: "sheet"; key: number; request?: EngineRequest | ChangedRequest; index: number }
+  | { kind: "report"; key: number; request?: EngineRequest | ChangedRequest }
   | { kind: "close"; key: number };
 
 type WorkerMessage = WorkerTask & { id: number };
@@ -249,6 +309,8 @@ type Phase = "loading" | "ready" | "busy" | "answered" | "failed";
 interface Answer {
   key: number;
   names: Record<InputKind, string | null>;
+  /** The tables it was computed from. */
+  inputs: Record<InputKind, Input | null>;
   /** The settings it was computed with. */
   settings: EngineSettings;
   preamble: InwardReport;

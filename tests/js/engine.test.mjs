@@ -48,12 +48,12 @@ const KEYS = {
   report: "electrodes format head inputs maps notes program settings version",
   program: "build name version",
   input: "name sha256",
-  head: "centre_mm fit_max_mm fit_rms_mm radius_mm shells",
+  head: "centre_is_fitted centre_mm fit_max_mm fit_rms_mm name radius_is_fitted radius_mm shells",
   shell: "conductivity_s_per_m outer_radius_mm tissue",
   electrode: "label position_mm used",
-  map: "adjusted_rv degrees_of_freedom dipole fit measured name projected residual residual_variance variance_explained",
+  map: "activation_sd adjusted_rv degrees_of_freedom dipole fit flipped measured name projected residual residual_variance variance_explained",
   dipole:
-    "at_boundary canonical_mm depth_mm direction eccentricity nearest_site position_mm radial_share side strength strength_unit",
+    "at_boundary canonical_direction canonical_mm depth_mm direction eccentricity nearest_site polarity position_mm radial_share side strength strength_comparable strength_unit",
   fit: "evaluations stopped_because",
   failed: "error name",
   error: "code hint message where",
@@ -179,7 +179,7 @@ test("what is absent is null, never missing", () => {
 
 test("settings that are undefined are as good as absent", () => {
   const plain = engine.analyse({ electrodes, maps });
-  const keys = ["head", "exclude", "mapUnit", "assess"];
+  const keys = ["head", "exclude", "mapUnit", "flip", "polarity", "activationSd", "assess"];
   const settings = { ...Object.fromEntries(keys.map((key) => [key, undefined])) };
   assert.deepEqual(engine.analyse({ electrodes, maps, settings }), plain);
   assert.deepEqual(engine.analyse({ electrodes, maps, settings: { head: { radius_mm: undefined } } }).maps, plain.maps);
@@ -205,6 +205,14 @@ test("unknown settings are refused", () => {
     { head: [] },
     { head: { shells: [["brain", 1, 0.33]] } },
     { exclude: null },
+    { flip: 0 },
+    { flip: [0.5] },
+    { flip: [-1] },
+    { flip: [NaN] },
+    { flip: ["left"] },
+    { polarity: "inverted" },
+    { activationSd: 1 },
+    { activationSd: ["1"] },
     "relative",
     7,
     [],

@@ -156,7 +156,13 @@ fn errors() -> Vec<(&'static str, ErrorReport)> {
             ),
         ),
         ("settings-unknown", (&Settings::unknown("colour")).into()),
+        ("map-index", error(Some(&e), &m, Settings { flip: vec![0, 4_000_000_000], ..plain() })),
+        ("map-index", error(Some(&e), &m, Settings { activation_sd: vec![None; 7], ..plain() })),
     ];
+    for sd in [0.0, -1.0, f64::NAN, f64::INFINITY, 1e101, 1e-101] {
+        let settings = Settings { activation_sd: vec![None, Some(sd)], ..plain() };
+        all.push(("activation-sd-invalid", error(Some(&e), &m, settings)));
+    }
     let mut bytes = m.clone().into_bytes();
     bytes[40] = 0xff;
     all.push(("input-encoding", (&run(None, &bytes, plain()).unwrap_err()).into()));

@@ -75,20 +75,23 @@ export function makeEngine(instantiate) {
     }
   }
 
-  /** @param {EngineRequest} request @returns {Study} */
-  function open(request) {
+  /**
+   * @param {EngineRequest} request
+   * @param {() => EngineRequest} keep gives the request in a form that the caller cannot change any more
+   * @param {{ glue: Glue, study: GlueStudy }} [opened] where it is open already
+   * @returns {Study}
+   */
+  function studyOn(request, keep, opened) {
     /** What the study opens itself again from. */
     let kept = request;
-    /** @type {Glue | null} */
-    let owner = null;
-    /** @type {GlueStudy | null} */
-    let study = null;
+    let owner = opened?.glue ?? null;
+    let study = opened?.study ?? null;
     let closed = false;
 
     /**
      * Runs one call on the study, which opens itself again after its instance was dropped.
      * @template T
-     * @param {(study: GlueStudy) => T} job
+     * @param {(study: GlueStudy, glue: Glue) => T} job
      */
     function use(job) {
       if (closed) {
@@ -99,7 +102,7 @@ export function makeEngine(instantiate) {
           study = current.open(kept);
           owner = current;
         }
-        return job(study);
+        return job(study, current);
       });
     }
 
@@ -109,12 +112,17 @@ export function makeEngine(instantiate) {
       notes: opened.notes(),
       count: opened.count,
     }));
-    kept = keepRequest(request);
+    kept = keep();
 
     return {
       ...facts,
       fit: (index) => use((opened) => opened.fit(index)),
       assess: (index, what) => use((opened) => opened.assess(index, what)),
+      with(settings) {
+        const first = use((opened, glue) => ({ glue, study: opened.with(settings) }));
+        const changed = { ...kept, settings: structuredClone(settings) };
+        return studyOn(changed, () => changed, first);
+      },
       close() {
         if (!closed && study !== null && owner === glue) study.free();
         closed = true;
@@ -127,8 +135,11 @@ export function makeEngine(instantiate) {
   }
 
   return {
+    get heads() {
+      return call((current) => current.heads());
+    },
     analyse: (request) => call((current) => current.analyse(request)),
-    open,
+    open: (request) => studyOn(request, () => keepRequest(request)),
     kindOf: (content) => call((current) => current.kindOf(content)),
     program: () => call((current) => current.program()),
   };

@@ -23,8 +23,21 @@ const workerEngine = makeEngine(() => {
 /** Requests by the page's keys; a study is opened when first asked about. @type {Map<number, EngineRequest>} */
 const namedRequests = new Map();
 
+/** Of a study under other settings, the key of the one whose tables it has. @type {Map<number, number>} */
+const bases = new Map();
+
 /** @type {Map<number, Study>} */
 const studies = new Map();
+
+/** @param {number} key @param {EngineRequest | ChangedRequest} request */
+function nameRequest(key, request) {
+  if (!("from" in request)) return namedRequests.set(key, request);
+  const { from, settings } = request;
+  const before = namedRequests.get(from);
+  if (before === undefined) throw new TypeError(`study ${from} has no request`);
+  bases.set(key, from);
+  return namedRequests.set(key, { ...before, settings });
+}
 
 /** @param {number} key */
 function studyOf(key) {
@@ -32,7 +45,9 @@ function studyOf(key) {
   if (known !== undefined) return known;
   const request = namedRequests.get(key);
   if (request === undefined) throw new TypeError(`study ${key} has no request`);
-  const study = workerEngine.open(request);
+  const base = bases.get(key);
+  const before = base === undefined ? undefined : studies.get(base);
+  const study = before?.with(request.settings ?? {}) ?? workerEngine.open(request);
   studies.set(key, study);
   return study;
 }
@@ -89,10 +104,12 @@ function rastersOf(sheet) {
 /** @param {WorkerMessage} message */
 async function answerTask(message) {
   const { id } = message;
-  if ("request" in message && message.request !== undefined) namedRequests.set(message.key, message.request);
+  if ("request" in message && message.request !== undefined) nameRequest(message.key, message.request);
   switch (message.kind) {
     case "program":
       return self.postMessage({ id, value: workerEngine.program() });
+    case "heads":
+      return self.postMessage({ id, value: workerEngine.heads });
     case "kindOf":
       return self.postMessage({ id, value: workerEngine.kindOf(message.content) });
     case "open": {
@@ -118,6 +135,7 @@ async function answerTask(message) {
       studies.get(message.key)?.close();
       studies.delete(message.key);
       namedRequests.delete(message.key);
+      bases.delete(message.key);
       return self.postMessage({ id, value: null });
   }
 }

@@ -58,9 +58,10 @@ export function makeSession() {
     if (fault.code !== "given-up") store.write({ phase: "failed", failure: pageFault(fault) });
   }
 
-  function dropPending() {
+  /** @param {boolean} [atOnce] ends the worker, which may be long at it, and with it what it has read */
+  function dropPending(atOnce = true) {
     if (pending === null || client === null) return;
-    client.giveUp(pending);
+    if (atOnce) client.giveUp(pending);
     client.forget(pending);
     pending = null;
   }
@@ -69,7 +70,9 @@ export function makeSession() {
   async function ask() {
     if (client === null) return;
     const { inputs, settings, answer: before } = store.read();
-    dropPending();
+    // The worker has read these tables for the present answer: it needs no more than the other settings.
+    const from = before?.inputs === inputs ? before.key : null;
+    dropPending(from === null);
     if (inputs.maps === null) {
       if (before !== null) client.forget(before.key);
       store.write({ phase: "ready", answer: null, failure: null, progress: null, stopped: false });
@@ -78,16 +81,17 @@ export function makeSession() {
     /** @type {EngineRequest} */
     const request = { maps: inputs.maps.content, settings };
     if (inputs.electrodes !== null) request.electrodes = inputs.electrodes.content;
-    const key = client.name(request);
+    const key = client.name(request, from);
     pending = key;
     store.write({ phase: "busy", failure: null, progress: null, stopped: false });
     try {
       const { preamble, count } = await client.ask({ kind: "open", key });
+      if (pending !== key) return;
       const names = { electrodes: inputs.electrodes?.name ?? null, maps: inputs.maps.name };
       // The same tables under other settings: the same map stays in view, unless it would have to be waited for.
       const same = before !== null && before.count === count && before.names.maps === names.maps;
       const chosen = same && before.chosen < KEEP_CHOSEN ? before.chosen : 0;
-      await fitMaps({ key, names, settings, preamble, count, maps: [], chosen, sheet: null });
+      await fitMaps({ key, names, inputs, settings, preamble, count, maps: [], chosen, sheet: null });
     } catch (fault) {
       if (pending === key) {
         pending = null;
@@ -124,7 +128,7 @@ export function makeSession() {
 
   /** @param {Answer} draft */
   async function show(draft) {
-    if (client === null) return;
+    if (client === null || pending !== draft.key) return;
     const sheet = await client.ask({ kind: "sheet", key: draft.key, index: draft.chosen });
     if (pending !== draft.key) return;
     pending = null;

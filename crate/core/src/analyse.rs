@@ -1,14 +1,14 @@
 //! The whole way of a table of maps in one call.
 
 use crate::assess::{adjusted_residual_variance, degrees_of_freedom};
-use crate::electrode::{Label, nearest_site};
+use crate::electrode::{Electrode, Label, nearest_site};
 use crate::finding::{Code, Error, Finding, Place};
 use crate::fit::{BATCH, Fit, Fitter};
 use crate::forward::LeadField;
-use crate::head::Shells;
+use crate::head::{Shells, catalogued};
 use crate::map::{MapUnit, Maps, average_referenced};
-use crate::math::mean;
-use crate::placement::{Placement, Wishes, place};
+use crate::math::{Vec3, mean};
+use crate::placement::{Placed, Placement, Wishes, place};
 use crate::read::{read_electrodes, read_maps};
 use crate::report::{
     Assessment, ElectrodeReport, EquivalentDipole, FittedMap, HeadReport, Input, MapReport, Note, Program, Report,
@@ -17,7 +17,7 @@ use crate::report::{
 use crate::scene::{Picture, Spline};
 use core::ops::Range;
 use sha2::{Digest, Sha256};
-use std::sync::OnceLock;
+use std::sync::{Arc, OnceLock};
 
 /// Distance from the centre below which a position has no site above and no place seen from above.
 const CENTRE_MM: f64 = 5.0;
@@ -54,33 +54,61 @@ pub fn analyse(request: &Request) -> Result<Report, Error> {
 /// A table of maps, read and prepared once; maps are fitted one by one when asked for.
 #[derive(Clone, Debug)]
 pub struct Study {
-    inputs: Vec<Input>,
+    tables: Arc<Tables>,
     settings: Settings,
-    build: Option<&'static str>,
-    maps: Maps,
     placement: Placement,
     shells: Shells,
-    fitter: Fitter,
+    fitter: Arc<Fitter>,
     notes: Vec<Finding>,
     /// Made when the first picture is asked for.
     spline: OnceLock<Option<Spline>>,
+}
+
+/// What was read, whatever the settings.
+#[derive(Debug)]
+struct Tables {
+    inputs: Vec<Input>,
+    build: Option<&'static str>,
+    electrodes: Option<Vec<Electrode>>,
+    maps: Maps,
+    notes: Vec<Finding>,
+}
+
+impl Tables {
+    fn read(request: &Request) -> Result<Self, Error> {
+        let (maps, mut notes) = read_maps(request.maps)?;
+        let electrodes = match request.electrodes.map(read_electrodes).transpose()? {
+            Some((electrodes, more)) => {
+                notes.extend(more);
+                Some(electrodes)
+            }
+            None => None,
+        };
+        let inputs = request.electrodes.map(|bytes| ("electrodes", bytes)).into_iter().chain([("maps", request.maps)]);
+        let inputs = inputs.map(|(name, bytes)| Input { name, sha256: sha256(bytes) }).collect();
+        Ok(Self { inputs, build: request.build, electrodes, maps, notes })
+    }
 }
 
 impl Study {
     /// Reads the inputs, places the electrodes on the head and prepares the search.
     ///
     /// # Errors
-    /// Any of [`read_electrodes`], [`read_maps`], [`place`] and [`Shells::new`].
+    /// Any of [`read_electrodes`], [`read_maps`], [`Settings::check`], [`Shells::new`] and [`place`].
     pub fn open(request: &Request) -> Result<Self, Error> {
-        let (maps, mut notes) = read_maps(request.maps)?;
-        let table = match request.electrodes.map(read_electrodes).transpose()? {
-            Some((table, more)) => {
-                notes.extend(more);
-                Some(table)
-            }
-            None => None,
-        };
-        let settings = request.settings.clone();
+        Self::prepared(Arc::new(Tables::read(request)?), request.settings.clone(), None)
+    }
+
+    /// The same tables under other settings; nothing is read again, and the digits are those of a new study.
+    ///
+    /// # Errors
+    /// Any of [`Settings::check`], [`Shells::new`] and [`place`].
+    pub fn with(&self, settings: Settings) -> Result<Self, Error> {
+        Self::prepared(Arc::clone(&self.tables), settings, Some(self))
+    }
+
+    fn prepared(tables: Arc<Tables>, settings: Settings, before: Option<&Self>) -> Result<Self, Error> {
+        settings.check(tables.maps.names.len())?;
         let head = settings.head.clone().unwrap_or_default();
         let shells = head.shells.map_or_else(|| Ok(Shells::standard()), Shells::new)?;
         let wishes = Wishes {
@@ -88,37 +116,38 @@ impl Study {
             centre_mm: head.centre_mm,
             radius_mm: head.radius_mm,
         };
-        let placement = place(table.as_deref(), &maps, &wishes)?;
-        notes.extend(placement.notes.iter().cloned());
+        let placement = place(tables.electrodes.as_deref(), &tables.maps, &wishes)?;
         let radius = placement.sphere.sphere.radius;
-        let fitter = Fitter::new(LeadField::new(&shells, radius, placement.directions()));
-        let inputs = request.electrodes.map(|bytes| ("electrodes", bytes)).into_iter().chain([("maps", request.maps)]);
-        let mut study = Self {
-            inputs: inputs.map(|(name, bytes)| Input { name, sha256: sha256(bytes) }).collect(),
-            notes,
-            build: request.build,
-            settings,
-            maps,
-            placement,
-            shells,
-            fitter,
-            spline: OnceLock::new(),
+        let directions = placement.directions();
+        let same_head = |study: &&Self| study.shells == shells && study.placement.sphere.sphere.radius == radius;
+        let (fitter, spline) = match before.filter(same_head) {
+            Some(study) if study.fitter.field().directions() == directions => {
+                (Arc::clone(&study.fitter), study.spline.clone())
+            }
+            Some(study) => (Arc::new(Fitter::new(study.fitter.field().elsewhere(directions))), OnceLock::new()),
+            None => (Arc::new(Fitter::new(LeadField::new(&shells, radius, directions))), OnceLock::new()),
         };
+        let notes = tables.notes.iter().chain(&placement.notes).cloned().collect();
+        let mut study = Self { tables, settings, placement, shells, fitter, notes, spline };
         study.note_the_rest();
         Ok(study)
     }
 
     /// Number of maps.
     pub fn count(&self) -> usize {
-        self.maps.names.len()
+        self.tables.maps.names.len()
     }
 
     /// The head of all fits.
     pub fn head(&self) -> HeadReport {
         let fit = self.placement.sphere;
+        let wished = self.settings.head.as_ref();
         HeadReport {
+            name: catalogued(&self.shells).map(|head| head.name),
             centre_mm: fit.sphere.centre,
+            centre_is_fitted: self.placement.measured && wished.is_none_or(|head| head.centre_mm.is_none()),
             radius_mm: fit.sphere.radius,
+            radius_is_fitted: self.placement.measured && wished.is_none_or(|head| head.radius_mm.is_none()),
             fit_rms_mm: fit.rms,
             fit_max_mm: fit.max,
             shells: self.shells.sized(fit.sphere.radius),
@@ -144,8 +173,8 @@ impl Study {
         Report {
             format: "inward-report",
             version: 1,
-            program: Program { name: "Inward", version: env!("CARGO_PKG_VERSION"), build: self.build },
-            inputs: self.inputs.clone(),
+            program: Program { name: "Inward", version: env!("CARGO_PKG_VERSION"), build: self.tables.build },
+            inputs: self.tables.inputs.clone(),
             settings: self.settings.clone(),
             head: self.head(),
             electrodes: self.electrodes(),
@@ -183,13 +212,20 @@ impl Study {
         self.fit(index)
     }
 
-    /// The answer for one fitted map in words and numbers.
-    pub fn sheet(&self, map: &FittedMap) -> Sheet {
-        let labels: Vec<String> = self.placement.used().map(|e| e.label.to_string()).collect();
-        let sites: Vec<Site> = labels
+    /// The answer for one map, counted from 0, in words and numbers; `map` is its fit.
+    pub fn sheet(&self, index: usize, map: &FittedMap) -> Sheet {
+        let mut used = map.measured.iter().zip(&map.projected).map(|(d, p)| (*d, *p));
+        let mut left_out = self.left_out(index, map).into_iter();
+        let sites: Vec<Site> = self
+            .placement
+            .electrodes
             .iter()
-            .zip(self.fitter.field().directions())
-            .map(|(label, &direction)| Site { label, direction })
+            .zip(self.directions())
+            .map(|(electrode, direction)| {
+                let values = if electrode.used { used.next() } else { left_out.next() };
+                let (measured, projected) = values.unwrap_or((f64::NAN, f64::NAN));
+                Site { label: electrode.label.as_str(), direction, used: electrode.used, measured, projected }
+            })
             .collect();
         Sheet::new(map, &self.head(), &sites, self.settings.map_unit)
     }
@@ -202,19 +238,44 @@ impl Study {
             .placement
             .electrodes
             .iter()
-            .map(|e| (e.label.to_string(), self.placement.canonical(e.position_mm).unit().unwrap_or_default(), e.used))
+            .zip(self.directions())
+            .map(|(e, direction)| (e.label.to_string(), direction, e.used))
             .collect();
         let layers = [&map.measured[..], &map.projected, &map.residual];
         let limit = map.scale_limit();
         let position = Some(map.dipole.canonical_mm).filter(|position| position.norm() > CENTRE_MM);
-        Some(Picture::new(
-            spline,
-            electrodes,
-            layers,
-            limit,
-            position,
-            self.placement.axes.to_canonical(map.dipole.direction),
-        ))
+        Some(Picture::new(spline, electrodes, layers, limit, position, map.dipole.canonical_direction))
+    }
+
+    /// Unit directions of all electrodes from the centre.
+    fn directions(&self) -> Vec<Vec3> {
+        let direction = |e: &Placed| self.placement.canonical(e.position_mm).unit().unwrap_or_default();
+        self.placement.electrodes.iter().map(direction).collect()
+    }
+
+    /// What the map has at the electrodes that are left out, and what the dipole predicts there, both referred to the mean
+    /// of the used ones.
+    fn left_out(&self, index: usize, map: &FittedMap) -> Vec<(f64, f64)> {
+        let Some(values) = self.values(index).ok() else { return Vec::new() };
+        let reference = mean(&values);
+        let column = self.tables.maps.values.column(index);
+        let sign = self.sign(index);
+        let out = || self.placement.electrodes.iter().zip(self.directions()).filter(|(e, _)| !e.used);
+        let dipole = &map.dipole;
+        let unit = self.settings.map_unit.microvolts() * map.activation_sd.unwrap_or(1.0);
+        let position = dipole.canonical_mm * (1.0 / self.placement.sphere.sphere.radius);
+        let moment = dipole.canonical_direction * (dipole.strength / unit);
+        let directions: Vec<Vec3> = out().map(|(_, direction)| direction).collect();
+        if directions.is_empty() {
+            return Vec::new();
+        }
+        let predicted = self.fitter.project_elsewhere(directions, position, moment);
+        out().zip(predicted).map(|((e, _), predicted)| (sign * (column[e.row] - reference), predicted)).collect()
+    }
+
+    /// −1 for a map whose sign is turned.
+    fn sign(&self, index: usize) -> f64 {
+        if self.settings.flipped(index) { -1.0 } else { 1.0 }
     }
 
     fn no_map(&self, index: usize) -> Error {
@@ -240,13 +301,15 @@ impl Study {
     fn reported(&self, index: usize, outcome: Result<FittedMap, Error>) -> MapReport {
         match outcome {
             Ok(map) => MapReport::Fitted(Box::new(map)),
-            Err(error) => MapReport::Failed { name: self.maps.names[index].clone(), error: Box::new((&error).into()) },
+            Err(error) => {
+                MapReport::Failed { name: self.tables.maps.names[index].clone(), error: Box::new((&error).into()) }
+            }
         }
     }
 
     /// Values of a map at the used electrodes, in its unit.
     fn values(&self, index: usize) -> Result<Vec<f64>, Error> {
-        let column = self.maps.values.column(index);
+        let column = self.tables.maps.values.column(index);
         let values: Vec<f64> = self.placement.used().map(|e| column[e.row]).collect();
         let missing: Vec<String> = self
             .placement
@@ -258,28 +321,34 @@ impl Study {
         if missing.is_empty() {
             return Ok(values);
         }
-        let name = &self.maps.names[index];
+        let name = &self.tables.maps.names[index];
         let place = Place { label: missing.first().cloned(), map: Some(name.clone()), ..Place::input("maps") };
         Err(Finding::new(Code::MapIncomplete).at(place).with("map", name.as_str()).with("labels", missing).into())
     }
 
     fn constant(&self, index: usize) -> Error {
-        let name = &self.maps.names[index];
+        let name = &self.tables.maps.names[index];
         let place = Place { map: Some(name.clone()), ..Place::input("maps") };
         Finding::new(Code::MapConstant).at(place).with("map", name.as_str()).into()
     }
 
+    /// The map is fitted as it is given; a turned sign turns what comes of it, so that no digit of the position changes.
     fn fitted(&self, index: usize, map: &[f64], fit: &Fit) -> FittedMap {
-        let measured = average_referenced(map);
-        let projected = self.fitter.project(fit.position, fit.moment);
+        let sign = self.sign(index);
+        let moment = fit.moment * sign;
+        let measured: Vec<f64> = average_referenced(map).into_iter().map(|value| sign * value).collect();
+        let projected = self.fitter.project(fit.position, moment);
         let residual = measured.iter().zip(&projected).map(|(d, p)| d - p).collect();
+        let activation_sd = self.settings.activation_sd(index);
         FittedMap {
-            name: self.maps.names[index].clone(),
+            name: self.tables.maps.names[index].clone(),
+            flipped: self.settings.flipped(index),
+            activation_sd,
             residual_variance: fit.residual_variance,
             variance_explained: 1.0 - fit.residual_variance,
             adjusted_rv: adjusted_residual_variance(fit.residual_variance, map.len()),
             degrees_of_freedom: degrees_of_freedom(map.len()),
-            dipole: self.equivalent_dipole(fit),
+            dipole: self.equivalent_dipole(fit, moment, activation_sd),
             fit: SearchReport { stopped_because: fit.stopped, evaluations: fit.evaluations },
             measured,
             projected,
@@ -287,7 +356,7 @@ impl Study {
         }
     }
 
-    fn equivalent_dipole(&self, found: &Fit) -> EquivalentDipole {
+    fn equivalent_dipole(&self, found: &Fit, moment: Vec3, activation_sd: Option<f64>) -> EquivalentDipole {
         /// Half the width of the midline.
         const MIDLINE_MM: f64 = 5.0;
         /// Distance from the centre below which the radius is rounding.
@@ -295,7 +364,7 @@ impl Study {
         let sphere = self.placement.sphere.sphere;
         let canonical_mm = found.position * sphere.radius;
         let distance = canonical_mm.norm();
-        let direction = found.moment.unit().unwrap_or_default();
+        let direction = moment.unit().unwrap_or_default();
         let unit = self.settings.map_unit;
         EquivalentDipole {
             position_mm: self.placement.table(canonical_mm),
@@ -307,8 +376,11 @@ impl Study {
                 _ => "midline",
             },
             direction: self.placement.axes.to_table(direction),
-            strength: found.moment.norm() * unit.microvolts(),
+            canonical_direction: direction,
+            polarity: self.settings.polarity,
+            strength: moment.norm() * unit.microvolts() * activation_sd.unwrap_or(1.0),
             strength_unit: if unit == MapUnit::Relative { "relative" } else { "nAm" },
+            strength_comparable: unit != MapUnit::Relative || activation_sd.is_some(),
             eccentricity: found.position.norm() / self.shells.brain_ratio(),
             depth_mm: self.shells.inner_skull_ratio() * sphere.radius - distance,
             radial_share: canonical_mm.unit().filter(|_| distance > RADIUS_MM).map(|radial| {
@@ -331,7 +403,9 @@ impl Study {
             self.notes.push(Finding::new(Code::AverageReferenced).with("maps", referenced).with("count", self.count()));
         }
         if self.settings.map_unit == MapUnit::Relative {
-            self.notes.push(Finding::new(Code::UnitRelative));
+            let activations = (0..self.count()).filter(|map| self.settings.activation_sd(*map).is_some()).count();
+            let note = Finding::new(Code::UnitRelative).with("activations", activations).with("count", self.count());
+            self.notes.push(note);
         }
         if self.fitter.field().images().is_none() {
             self.notes.push(Finding::new(Code::SeriesOnly));

@@ -246,6 +246,8 @@ codes! {
     MapIncomplete = "map-incomplete",
     /// Error: there is no map of this number.
     MapIndex = "map-index",
+    /// Error: a standard deviation of an activation that is no positive number.
+    ActivationSdInvalid = "activation-sd-invalid",
     /// Note: x right, y front, z up was assumed.
     AxesAssumed = "axes-assumed",
     /// Note: parts of a file that are no tables.

@@ -34,6 +34,8 @@ pub struct Placement {
     pub sphere: SphereFit,
     /// The way from the frame of the table to canonical axes.
     pub axes: Axes,
+    /// Whether positions were measured, so that the sphere was fitted to them unless wished for otherwise.
+    pub measured: bool,
     /// What was assumed and what did not match.
     pub notes: Vec<Finding>,
 }
@@ -108,6 +110,7 @@ pub fn place(table: Option<&[Electrode]>, maps: &Maps, wishes: &Wishes) -> Resul
         Some(_) => recognise_unit(&electrodes, &mut notes)?,
         None => Frame::Directions(Code::StandardPositions),
     };
+    let measured = matches!(frame, Frame::Positions { .. });
     let sphere = match frame {
         Frame::Positions { millimetres, sphere } => {
             electrodes.iter_mut().for_each(|e| e.position_mm = e.position_mm * millimetres);
@@ -141,7 +144,7 @@ pub fn place(table: Option<&[Electrode]>, maps: &Maps, wishes: &Wishes) -> Resul
                 .with("label", worst.label.as_str()),
         );
     }
-    Ok(Placement { electrodes, sphere, axes: Axes::CANONICAL, notes })
+    Ok(Placement { electrodes, sphere, axes: Axes::CANONICAL, measured, notes })
 }
 
 /// Electrodes with position and value, positions still in the unit of the table.

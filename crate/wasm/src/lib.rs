@@ -27,6 +27,12 @@ pub fn program() -> Result<JsValue, JsValue> {
     plain(&inward_core::Program { name: "Inward", version: env!("CARGO_PKG_VERSION"), build: BUILD })
 }
 
+/// Published heads to choose from, the default one first.
+#[wasm_bindgen]
+pub fn heads() -> Result<JsValue, JsValue> {
+    plain(&inward_core::head::heads())
+}
+
 /// Whether the content of a file, a string or bytes, is a table of `electrodes` or of `maps`.
 #[wasm_bindgen(js_name = kindOf)]
 pub fn kind_of(content: JsValue) -> Result<JsValue, JsValue> {
@@ -54,6 +60,11 @@ pub struct Study(Inner);
 
 #[wasm_bindgen]
 impl Study {
+    /// The same tables under other settings; nothing is read again.
+    pub fn with(&self, settings: JsValue) -> Result<Study, JsValue> {
+        self.0.with(wire::settings(&settings)?).map(Study).map_err(|error| thrown(&error))
+    }
+
     /// Number of maps.
     #[wasm_bindgen(getter)]
     pub fn count(&self) -> usize {
@@ -123,7 +134,7 @@ impl Study {
         match self.0.fit(index).map_err(|error| thrown(&error))? {
             MapReport::Failed { .. } => Ok(JsValue::NULL),
             MapReport::Fitted(map) => {
-                let sheet = plain(&self.0.sheet(&map))?;
+                let sheet = plain(&self.0.sheet(index, &map))?;
                 let picture = self.0.picture(&map).map_or(JsValue::NULL, |picture| picture::to_js(&picture).into());
                 set(&Object::from(sheet.clone()), "picture", picture);
                 Ok(sheet)

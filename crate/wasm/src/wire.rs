@@ -35,7 +35,7 @@ impl Inputs {
 
 /// The settings. Keys that are `undefined` are as good as absent; `serde_wasm_bindgen` asks objects for the keys it knows,
 /// so that others are looked for here.
-fn settings(given: &JsValue) -> Result<Settings, JsValue> {
+pub(crate) fn settings(given: &JsValue) -> Result<Settings, JsValue> {
     if given.is_undefined() || given.is_null() {
         return Ok(Settings::default());
     }

@@ -27,6 +27,8 @@ export function makeClient(module, startWorker) {
   const waiting = new Map();
   /** @type {Map<number, EngineRequest>} */
   const requests = new Map();
+  /** Of a request with the tables of another and other settings, the other's key. @type {Map<number, number>} */
+  const bases = new Map();
   /** Keys whose request the present worker holds. @type {Set<number>} */
   const told = new Set();
 
@@ -71,11 +73,23 @@ export function makeClient(module, startWorker) {
     return started;
   }
 
+  /**
+   * Tables that the worker holds are not sent again.
+   * @param {number} key
+   * @returns {EngineRequest | ChangedRequest | undefined}
+   */
+  function requestOf(key) {
+    const request = requests.get(key);
+    const from = bases.get(key);
+    if (request === undefined || from === undefined || !told.has(from)) return request;
+    return { from, settings: request.settings ?? {} };
+  }
+
   /** @param {number} id @param {WorkerTask} task */
   function post(id, task) {
     try {
       const present = ensureWorker();
-      const request = "key" in task && !told.has(task.key) ? requests.get(task.key) : undefined;
+      const request = "key" in task && !told.has(task.key) ? requestOf(task.key) : undefined;
       if ("key" in task) told.add(task.key);
       present.postMessage(request === undefined ? { ...task, id } : { ...task, id, request });
     } catch (error) {
@@ -105,15 +119,21 @@ export function makeClient(module, startWorker) {
   return {
     ask,
 
-    /** Names a request; it travels once, with the first task that carries the key. @param {EngineRequest} request */
-    name(request) {
+    /**
+     * Names a request; it travels once, with the first task that carries the key.
+     * @param {EngineRequest} request
+     * @param {number | null} [from] the key of a request with the same tables, whose study is used again
+     */
+    name(request, from) {
       const key = nextKey++;
       requests.set(key, request);
+      if (from !== undefined && from !== null && requests.has(from)) bases.set(key, from);
       return key;
     },
 
     /** @param {number} key */
     forget(key) {
+      bases.delete(key);
       if (requests.delete(key) && worker !== null && told.delete(key)) ask({ kind: "close", key }).catch(() => {});
     },
 

@@ -9,7 +9,7 @@ mod objective;
 mod refine;
 
 use crate::forward::LeadField;
-use crate::math::{Vec3, centre, dot};
+use crate::math::{Vec3, centre, dot, mean};
 use grid::Grid;
 use objective::Objective;
 
@@ -123,11 +123,23 @@ impl Fitter {
 
     /// The potential of a dipole in µV, average-referenced.
     pub fn project(&self, position: Vec3, moment: Vec3) -> Vec<f64> {
-        let rows = self.field.quick(position);
-        let mut map: Vec<f64> = rows.rows().into_iter().map(|r| Vec3::new(r[0], r[1], r[2]).dot(moment)).collect();
+        let mut map = potential(&self.field, position, moment);
         centre(&mut map);
         map
     }
+
+    /// The potential of a dipole in µV at other places on the head, in these unit directions, referred to the mean of the
+    /// electrodes fitted.
+    pub fn project_elsewhere(&self, directions: Vec<Vec3>, position: Vec3, moment: Vec3) -> Vec<f64> {
+        let reference = mean(&potential(&self.field, position, moment));
+        let field = self.field.elsewhere(directions);
+        potential(&field, position, moment).into_iter().map(|value| value - reference).collect()
+    }
+}
+
+fn potential(field: &LeadField, position: Vec3, moment: Vec3) -> Vec<f64> {
+    let rows = field.quick(position);
+    rows.rows().into_iter().map(|r| Vec3::new(r[0], r[1], r[2]).dot(moment)).collect()
 }
 
 /// The average-referenced map with unit length, and its length; `None` for a map that is constant to rounding.

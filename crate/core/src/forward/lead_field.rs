@@ -40,6 +40,17 @@ impl LeadField {
         Self::with_kernels(shells, radius_mm, directions, Series::new(shells), None)
     }
 
+    /// Other electrodes on the same head.
+    pub fn elsewhere(&self, directions: Vec<Vec3>) -> Self {
+        Self {
+            blocks: in_blocks(&directions),
+            directions,
+            series: self.series.clone(),
+            images: self.images.clone(),
+            ..*self
+        }
+    }
+
     fn with_kernels(
         shells: &Shells,
         radius_mm: f64,
@@ -47,8 +58,7 @@ impl LeadField {
         series: Series,
         images: Option<Images>,
     ) -> Self {
-        let [x, y, z] = [0, 1, 2].map(|axis| blocks(&directions.iter().map(|e| e[axis]).collect::<Vec<_>>()));
-        let blocks = x.into_iter().zip(y).zip(z).map(|((x, y), z)| [x, y, z]).collect();
+        let blocks = in_blocks(&directions);
         // 1 nAm over 1 S/m · 1 mm² is 1 mV = 1000 µV.
         let scale = 1000.0 / (4.0 * core::f64::consts::PI * shells.specs()[0].conductivity * radius_mm * radius_mm);
         Self { directions, blocks, series, images, scale, brain_ratio: shells.brain_ratio() }
@@ -167,6 +177,11 @@ impl Local<'_> {
             .zip(&self.potentials)
             .map(move |(e, potential)| (e, potential.terms(u, along(e, self.position))))
     }
+}
+
+fn in_blocks(directions: &[Vec3]) -> Vec<Block> {
+    let [x, y, z] = [0, 1, 2].map(|axis| blocks(&directions.iter().map(|e| e[axis]).collect::<Vec<_>>()));
+    x.into_iter().zip(y).zip(z).map(|((x, y), z)| [x, y, z]).collect()
 }
 
 /// The scalar products of a block's directions with a vector.

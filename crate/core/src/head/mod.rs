@@ -1,12 +1,14 @@
 //! The head: the axes of its frame, a sphere fitted to the electrodes and the concentric shells inside it.
 
 mod axes;
+mod catalogue;
 mod length;
 mod orientation;
 mod shells;
 mod sphere;
 
 pub use axes::{Axes, AxesName};
+pub use catalogue::{CatalogueHead, catalogued, heads};
 pub use length::LengthUnit;
 pub use orientation::{Landmarks, Orientation};
 pub use shells::{Shell, ShellSpec, Shells, Tissue};

@@ -66,24 +66,9 @@ impl Shells {
         Ok(Self { specs })
     }
 
-    /// The default head: radii 79 : 81 : 85 : 88 (Cuffin & Cohen 1979, EEG Clin Neurophysiol 47:132–146), conductivities
-    /// of brain and scalp 0.33 S/m (Geddes & Baker 1967, Med Biol Eng 5:271–293), cerebrospinal fluid 1.79 S/m (Baumann
-    /// et al. 1997, IEEE TBME 44:220–223), and a skull 25 times less conductive than brain (Lai et al. 2005, Clin
-    /// Neurophysiol 116:456–465).
+    /// The default head, the first of [`super::heads`].
     pub fn standard() -> Self {
-        let shell = |tissue: &str, radius: f64, conductivity| ShellSpec {
-            tissue: tissue.into(),
-            ratio: radius / 88.0,
-            conductivity,
-        };
-        Self {
-            specs: vec![
-                shell("brain", 79.0, 0.33),
-                shell("cerebrospinal fluid", 81.0, 1.79),
-                shell("skull", 85.0, 0.0132),
-                shell("scalp", 88.0, 0.33),
-            ],
-        }
+        Self { specs: super::heads()[0].shells.clone() }
     }
 
     /// The shells as stated, innermost first.

@@ -140,6 +140,10 @@ pub fn message(finding: &Finding) -> String {
         }
         Code::MapIndex => format!("There is no map {}; the table holds {}.", value("index"), value("count")),
         Code::PartPassedOver => format!("Passed over in the {input}: {} ({}).", value("labels"), value("why")),
+        Code::ActivationSdInvalid => format!(
+            "The standard deviation given for the activation of map {} is not a number from 1e-100 to 1e100.",
+            value("index")
+        ),
         Code::AxesAssumed => {
             "Axes were assumed: x to the right, y to the front, z up. Nothing in the table was used to check this."
                 .into()
@@ -174,7 +178,12 @@ pub fn message(finding: &Finding) -> String {
             }
         }
         Code::UnitRelative => {
-            "The unit of the maps is not known: strengths are relative and not comparable between maps.".into()
+            let comparable = match (value("activations").as_str(), value("count").as_str()) {
+                ("" | "0", _) => "not comparable between maps",
+                (some, all) if some == all => "comparable by the standard deviations of their activations",
+                _ => "comparable only between maps whose activation's standard deviation is given",
+            };
+            format!("The unit of the maps is not known: strengths are relative and {comparable}.")
         }
         Code::PositionsWithoutValue => format!("These electrodes have no value in the maps: {}.", value("labels")),
         Code::ValuesWithoutPosition => {
@@ -242,6 +251,9 @@ pub fn hint(code: Code) -> &'static str {
         Code::MapConstant => "Check the column: such a map has no pattern that a source could explain.",
         Code::MapIncomplete => "Fill in the value, or leave the electrode out.",
         Code::MapIndex => "Count maps from 0.",
+        Code::ActivationSdInvalid => {
+            "Give a positive number in the unit of the activation, or leave it open; maps are counted from 0."
+        }
         _ => "",
     }
 }

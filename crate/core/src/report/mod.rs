@@ -1,13 +1,15 @@
 //! Results as they leave the program: plain structures for reports, and the only place where numbers become text.
 
+mod figure;
 mod messages;
 mod number;
 mod settings;
 mod sheet;
 
+pub use figure::{Figure, FigureDipole, FigureShell};
 pub use messages::{hint, is_warning, message};
-pub use settings::{Assessment, HeadSettings, Settings};
-pub use sheet::{Alternative, Row, Scale, Sheet, Site};
+pub use settings::{Assessment, HeadSettings, Polarity, Settings};
+pub use sheet::{Alternative, HeadSheet, Row, Scale, Sheet, SheetElectrode, Site};
 
 use crate::finding::{Code, Error, Finding, Place, Value};
 use crate::fit::Stopped;
@@ -62,10 +64,16 @@ pub struct Input {
 /// The head model.
 #[derive(Clone, Debug, PartialEq, Serialize)]
 pub struct HeadReport {
+    /// Name in the catalogue of heads, where the shells are exactly one of its.
+    pub name: Option<&'static str>,
     /// Centre in the frame of the electrode table.
     pub centre_mm: Vec3,
+    /// Whether the centre was fitted to the electrodes; otherwise it was set or is the standard one.
+    pub centre_is_fitted: bool,
     /// Scalp radius.
     pub radius_mm: f64,
+    /// Whether the radius was fitted to the electrodes.
+    pub radius_is_fitted: bool,
     /// Root mean square of the electrodes' radial deviations from the sphere.
     pub fit_rms_mm: f64,
     /// Largest absolute deviation.
@@ -105,6 +113,10 @@ pub enum MapReport {
 pub struct FittedMap {
     /// Its name.
     pub name: String,
+    /// Whether its sign was turned; all that follows is of the turned map.
+    pub flipped: bool,
+    /// Standard deviation of its activation, where it is given.
+    pub activation_sd: Option<f64>,
     /// |d − L m|² / |d|², both average-referenced.
     pub residual_variance: f64,
     /// 1 − residual variance.
@@ -143,12 +155,18 @@ pub struct EquivalentDipole {
     pub nearest_site: Option<&'static str>,
     /// Which half of the head, `midline` within 5 mm of its mid-plane.
     pub side: &'static str,
-    /// Unit moment in the frame of the electrode table, for the sign of the map as given.
+    /// Unit moment in the frame of the electrode table, for the sign of the map as given or turned.
     pub direction: Vec3,
-    /// Moment in nAm; relative maps count as µV.
+    /// The same with x right, y front, z up.
+    pub canonical_direction: Vec3,
+    /// Whether the map's sign means something, and with it the sense of the direction.
+    pub polarity: Polarity,
+    /// Moment in nAm, times the standard deviation of the activation where it is given; relative maps count as µV.
     pub strength: f64,
     /// `nAm` or `relative`.
     pub strength_unit: &'static str,
+    /// Whether strengths may be compared between maps of the table: their unit or their activation is known.
+    pub strength_comparable: bool,
     /// Distance from the centre over the radius of the innermost shell.
     pub eccentricity: f64,
     /// Inner-skull radius less the distance from the centre.

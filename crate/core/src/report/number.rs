@@ -49,6 +49,33 @@ pub(super) fn significant(value: f64, digits: usize) -> String {
     plain(format!("{value:.decimals$}"))
 }
 
+/// A value beside others up to a limit: as many decimals as give the limit three significant digits.
+pub(super) fn beside(value: f64, limit: f64) -> String {
+    match magnitude(limit) {
+        exponent if (-4..7).contains(&exponent) => {
+            plain(format!("{value:.*}", usize::try_from(2 - exponent).unwrap_or(0)))
+        }
+        _ => significant(value, 3),
+    }
+}
+
+/// A number of a source: at most four significant digits, without zeros at the end.
+pub(super) fn given(value: f64) -> String {
+    let text = significant(value, 4);
+    match text.contains('.') && !text.contains('e') {
+        true => text.trim_end_matches('0').trim_end_matches('.').to_owned(),
+        false => text,
+    }
+}
+
+/// The power of ten of a number's first digit.
+fn magnitude(value: f64) -> i32 {
+    if value == 0.0 {
+        return 0;
+    }
+    format!("{value:e}").split_once('e').and_then(|(_, exponent)| exponent.parse().ok()).unwrap_or(0)
+}
+
 /// Zero has no sign.
 fn plain(text: String) -> String {
     match text.strip_prefix('-') {
@@ -75,5 +102,14 @@ mod tests {
         assert_eq!(significant(1.5e9, 3), "1.50e9");
         assert_eq!(significant(12345.0, 3), "12345");
         assert_eq!(millimetres(-0.2), "0");
+        assert_eq!(
+            ["0.033", "12.3", "-0.2", "0.0"],
+            [beside(0.0331, 0.4).as_str(), &beside(12.34, 12.34), &beside(-0.17, 12.34), &beside(-0.01, 12.34)]
+        );
+        assert_eq!((beside(1234.4, 5000.0).as_str(), beside(1e-6, 3e-6).as_str()), ("1234", "1.00e-6"));
+        assert_eq!(
+            ["0.33", "0.004125", "25", "1.79", "0"],
+            [0.33, 0.004125, 25.0, 1.79, 0.0].map(given).each_ref().map(String::as_str)
+        );
     }
 }

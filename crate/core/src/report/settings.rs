@@ -14,8 +14,25 @@ pub struct Settings {
     pub exclude: Vec<String>,
     /// Unit of the maps.
     pub map_unit: MapUnit,
+    /// Maps, counted from 0, whose sign is turned.
+    pub flip: Vec<usize>,
+    /// Whether the maps' sign means something.
+    pub polarity: Polarity,
+    /// Standard deviation of each map's activation, by the number of the map; strengths are multiplied by it.
+    pub activation_sd: Vec<Option<f64>>,
     /// What to add to each fit.
     pub assess: Vec<Assessment>,
+}
+
+/// Whether the sign of a map means something.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(rename_all = "kebab-case")]
+pub enum Polarity {
+    /// As of a component: the dipole is an axis without direction.
+    #[default]
+    Arbitrary,
+    /// Positive values are positive: the dipole has a direction.
+    Declared,
 }
 
 /// A head other than the standard one.
@@ -30,12 +47,42 @@ pub struct HeadSettings {
     pub radius_mm: Option<f64>,
 }
 
+/// Standard deviations that are computed with, as for numbers of tables.
+const SIZES: core::ops::RangeInclusive<f64> = 1e-100..=1e100;
+
 /// What can be added to a fit: nothing yet.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
 #[serde(rename_all = "kebab-case")]
 pub enum Assessment {}
 
 impl Settings {
+    /// Checks what names maps by their number.
+    ///
+    /// # Errors
+    /// `map-index`, `activation-sd-invalid`.
+    pub fn check(&self, maps: usize) -> Result<(), Error> {
+        let finding = |code, index: usize| Finding::new(code).at(Place::input("settings")).with("index", index);
+        let named = self.flip.iter().copied().chain(self.activation_sd.len().checked_sub(1));
+        if let Some(index) = named.into_iter().find(|index| *index >= maps) {
+            return Err(finding(Code::MapIndex, index).with("count", maps).into());
+        }
+        let invalid = |sd: &Option<f64>| sd.is_some_and(|sd| !SIZES.contains(&sd));
+        match self.activation_sd.iter().position(invalid) {
+            Some(index) => Err(finding(Code::ActivationSdInvalid, index).into()),
+            None => Ok(()),
+        }
+    }
+
+    /// Whether the sign of this map is turned.
+    pub fn flipped(&self, map: usize) -> bool {
+        self.flip.contains(&map)
+    }
+
+    /// The standard deviation of this map's activation, where it is given.
+    pub fn activation_sd(&self, map: usize) -> Option<f64> {
+        self.activation_sd.get(map).copied().flatten()
+    }
+
     /// The error for settings that could not be understood.
     pub fn unknown(problem: impl core::fmt::Display) -> Error {
         Finding::new(Code::SettingsUnknown).at(Place::input("settings")).with("problem", problem.to_string()).into()

@@ -1,9 +1,12 @@
-use super::number::{hundredths, millimetres, percent, percent_left, significant, tenths};
-use super::{FittedMap, HeadReport};
+use super::figure::{ABOVE, BEHIND, Figure, LEFT, TURNED};
+use super::number::{beside, given, hundredths, millimetres, percent, percent_left, significant, tenths};
+use super::{FittedMap, HeadReport, Polarity};
 use crate::fit::Stopped;
+use crate::head::heads;
 use crate::map::MapUnit;
 use crate::math::Vec3;
 use serde::Serialize;
+use std::borrow::Cow;
 
 /// The answer for one map in words and in a table.
 #[derive(Clone, Debug, PartialEq, Serialize)]
@@ -12,7 +15,13 @@ pub struct Sheet {
     pub sentence: String,
     /// The numbers.
     pub rows: Vec<Row>,
-    /// The three maps in words.
+    /// The head that they were computed in.
+    pub head: HeadSheet,
+    /// All electrodes that have a position.
+    pub electrodes: Vec<SheetElectrode>,
+    /// The dipole in the head.
+    pub figure: Figure,
+    /// The drawings in words.
     pub alt: Alternative,
     /// What the shared scale of the three maps ends with.
     pub scale: Scale,
@@ -31,9 +40,9 @@ pub struct Scale {
 #[derive(Clone, Debug, PartialEq, Serialize)]
 pub struct Row {
     /// Fixed name for programs.
-    pub code: &'static str,
+    pub code: Cow<'static, str>,
     /// Name for people.
-    pub label: &'static str,
+    pub label: Cow<'static, str>,
     /// The number.
     pub value: String,
     /// Its unit, empty where it has none.
@@ -42,7 +51,37 @@ pub struct Row {
     pub meaning: &'static str,
 }
 
-/// The maps in words, for those who do not see them.
+/// A head in words and numbers.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct HeadSheet {
+    /// Its name for people.
+    pub title: &'static str,
+    /// Where its shells come from.
+    pub source: &'static str,
+    /// Its numbers.
+    pub rows: Vec<Row>,
+}
+
+/// Values at one electrode as text, with the digits that the scale of the maps deserves.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct SheetElectrode {
+    /// Its label.
+    pub label: String,
+    /// Whether the fit uses it.
+    pub used: bool,
+    /// How far the dipole's map is off, without sign, in the unit of the map; 0 where the map has no value.
+    pub misfit: f64,
+    /// Value of the map; empty where it has none.
+    pub measured: String,
+    /// Value of the dipole's map.
+    pub projected: String,
+    /// What is left over; empty where the map has no value.
+    pub residual: String,
+    /// Its share of what is left over, in percent of the power; empty where the fit does not use it.
+    pub share: String,
+}
+
+/// The drawings in words, for those who do not see them.
 #[derive(Clone, Debug, PartialEq, Serialize)]
 pub struct Alternative {
     /// The map.
@@ -51,31 +90,84 @@ pub struct Alternative {
     pub projected: String,
     /// What is left over.
     pub residual: String,
+    /// The dipole from above.
+    pub above: String,
+    /// The dipole from behind.
+    pub behind: String,
+    /// The dipole from the left.
+    pub left: String,
+    /// The dipole in the view that can be turned.
+    pub turned: String,
 }
 
-/// An electrode's label with its direction from the centre.
-#[derive(Clone, Copy, Debug)]
+/// An electrode with its direction from the centre and its values, referred to the mean of the used electrodes.
+#[derive(Clone, Debug)]
 pub struct Site<'a> {
     /// Its label.
     pub label: &'a str,
     /// Unit direction: x right, y front, z up.
     pub direction: Vec3,
+    /// Whether the fit uses it.
+    pub used: bool,
+    /// Value of the map; NaN where it has none.
+    pub measured: f64,
+    /// Value of the dipole's map.
+    pub projected: f64,
+}
+
+impl Site<'_> {
+    fn residual(&self) -> f64 {
+        self.measured - self.projected
+    }
 }
 
 impl Sheet {
-    /// The sheet of a fitted map.
+    /// The sheet of a fitted map; `sites` are all electrodes that have a position.
     pub fn new(map: &FittedMap, head: &HeadReport, sites: &[Site], unit: MapUnit) -> Self {
+        let used: Vec<&Site> = sites.iter().filter(|site| site.used).collect();
+        let dipole = &map.dipole;
         Self {
             sentence: sentence(map),
-            rows: rows(map, head, sites.len()),
+            rows: rows(map, head, used.len(), sites.len()),
+            head: head_sheet(head),
+            electrodes: electrodes(map, sites),
+            figure: Figure::new(dipole, head, sites),
             alt: Alternative {
-                measured: described("Measured map", &map.measured, sites, unit),
-                projected: described("Map of the one dipole", &map.projected, sites, unit),
-                residual: described("Left over", &map.residual, sites, unit),
+                measured: described("Measured map", &used, |site| site.measured, unit),
+                projected: described("Map of the one dipole", &used, |site| site.projected, unit),
+                residual: described("Left over", &used, |site| site.residual(), unit),
+                above: ABOVE.words(dipole),
+                behind: BEHIND.words(dipole),
+                left: LEFT.words(dipole),
+                turned: TURNED.words(dipole),
             },
             scale: Scale { limit: significant(map.scale_limit(), 2), unit: unit_name(unit) },
         }
     }
+}
+
+fn electrodes(map: &FittedMap, sites: &[Site]) -> Vec<SheetElectrode> {
+    let limit = map.scale_limit();
+    // Scaled first: squares of very large or small values would leave the range of numbers.
+    let power = |residual: f64| (residual / limit) * (residual / limit);
+    let all: f64 = map.residual.iter().map(|r| power(*r)).sum();
+    let electrode = |site: &Site| {
+        let residual = site.residual();
+        let text = |value: f64| if value.is_nan() { String::new() } else { beside(value, limit) };
+        SheetElectrode {
+            label: site.label.to_owned(),
+            used: site.used,
+            misfit: if residual.is_nan() { 0.0 } else { residual.abs() },
+            measured: text(site.measured),
+            projected: text(site.projected),
+            residual: text(residual),
+            share: match site.used {
+                true => percent(if all > 0.0 { power(residual) / all } else { 0.0 }),
+                false => String::new(),
+            },
+        }
+    };
+    sites.iter().map(electrode).collect()
 }
 
 fn sentence(map: &FittedMap) -> String {
@@ -110,19 +202,10 @@ fn sentence(map: &FittedMap) -> String {
 /// Stands beside every share.
 const CAUTION: &str = "A low residual variance alone does not show that a map has a single source.";
 
-fn rows(map: &FittedMap, head: &HeadReport, electrodes: usize) -> Vec<Row> {
+fn rows(map: &FittedMap, head: &HeadReport, used: usize, placed: usize) -> Vec<Row> {
     let dipole = &map.dipole;
-    let triple = |v: Vec3, text: fn(f64) -> String| v.0.map(text).join(", ");
-    let row = |code, label, value: String, unit, meaning| Row { code, label, value, unit, meaning };
-    let shells = head
-        .shells
-        .iter()
-        .map(|s| {
-            format!("{} {} mm {} S/m", s.tissue, tenths(s.outer_radius_mm), significant(s.conductivity_s_per_m, 3))
-        })
-        .collect::<Vec<_>>()
-        .join("; ");
-    vec![
+    let arbitrary = dipole.polarity == Polarity::Arbitrary;
+    let mut rows = vec![
         row(
             "residual_variance",
             "Residual variance",
@@ -152,6 +235,13 @@ fn rows(map: &FittedMap, head: &HeadReport, electrodes: usize) -> Vec<Row> {
             "Electrodes used less seven: the reference, three of position, three of moment.",
         ),
         row(
+            "electrodes",
+            "Electrodes used",
+            if used == placed { used.to_string() } else { format!("{used} of {placed}") },
+            "",
+            "Electrodes with position and value, not left out.",
+        ),
+        row(
             "nearest_site",
             "Nearest site above",
             dipole.nearest_site.unwrap_or("none").to_owned(),
@@ -164,7 +254,14 @@ fn rows(map: &FittedMap, head: &HeadReport, electrodes: usize) -> Vec<Row> {
             "Model depth",
             millimetres(dipole.depth_mm),
             "mm",
-            "Distance from the position outwards to the inner skull of the model; extended sources fit too deep.",
+            match skull(head) {
+                Some(_) => {
+                    "Distance from the position outwards to the inner skull of the model; extended sources fit too deep."
+                }
+                None => {
+                    "Distance from the position outwards to the surface of the innermost shell; extended sources fit too deep."
+                }
+            },
         ),
         row(
             "eccentricity",
@@ -187,12 +284,43 @@ fn rows(map: &FittedMap, head: &HeadReport, electrodes: usize) -> Vec<Row> {
             "mm",
             "Position in the axes and from the origin of the electrode table.",
         ),
+    ];
+    let (canonical, table) = (direction(dipole.canonical_direction, arbitrary), direction(dipole.direction, arbitrary));
+    rows.extend(match arbitrary {
+        true => [
+            row(
+                "canonical_direction",
+                "Axis",
+                canonical,
+                "",
+                "Unit vector along the moment, x to the right, y to the front, z up; the map's sign is arbitrary, so that both senses are the same.",
+            ),
+            row("direction", "Axis in the table's frame", table, "", "The same in the axes of the electrode table."),
+        ],
+        false => [
+            row(
+                "canonical_direction",
+                "Direction",
+                canonical,
+                "",
+                "Unit moment from the negative to the positive pole, x to the right, y to the front, z up.",
+            ),
+            row(
+                "direction",
+                "Direction in the table's frame",
+                table,
+                "",
+                "The same in the axes of the electrode table.",
+            ),
+        ],
+    });
+    rows.extend([
         row(
-            "direction",
-            "Direction",
-            triple(dipole.direction, hundredths),
+            "polarity",
+            "Sign of the map",
+            format!("{}, {}", if map.flipped { "turned" } else { "as given" }, if arbitrary { "arbitrary" } else { "declared" }),
             "",
-            "Unit moment from the negative to the positive pole, for the sign of the map as given; a component's sign is arbitrary.",
+            "Whether the map's sign was turned, and whether it means something; a component's does not unless it is declared.",
         ),
         row(
             "radial_share",
@@ -206,15 +334,26 @@ fn rows(map: &FittedMap, head: &HeadReport, electrodes: usize) -> Vec<Row> {
             "Strength",
             significant(dipole.strength, 3),
             dipole.strength_unit,
-            "Length of the moment; relative strengths are not comparable between maps.",
+            match (dipole.strength_comparable, map.activation_sd.is_some()) {
+                (false, _) => {
+                    "Length of the moment; relative, not comparable between components unless their activations' standard deviations are given."
+                }
+                (true, false) => "Length of the moment.",
+                (true, true) => "Length of the moment times the standard deviation of the activation.",
+            },
         ),
+    ]);
+    rows.extend(map.activation_sd.map(|sd| {
         row(
-            "electrodes",
-            "Electrodes used",
-            electrodes.to_string(),
+            "activation_sd",
+            "Standard deviation of the activation",
+            given(sd),
             "",
-            "Electrodes with position and value, not left out.",
-        ),
+            "As given; with it strengths are comparable between the components of a table.",
+        )
+    }));
+    rows.extend([
+        row("head", "Head", head_title(head).0.to_owned(), "", "The shells that the position was computed in."),
         row(
             "head_radius_mm",
             "Head radius",
@@ -222,32 +361,116 @@ fn rows(map: &FittedMap, head: &HeadReport, electrodes: usize) -> Vec<Row> {
             "mm",
             "Radius of the sphere that stands for the scalp.",
         ),
+    ]);
+    rows
+}
+
+/// The head's title and source.
+fn head_title(head: &HeadReport) -> (&'static str, &'static str) {
+    heads()
+        .iter()
+        .find(|known| head.name == Some(known.name))
+        .map_or(("Own shells", "Shells and conductivities set by hand"), |known| (known.title, known.source))
+}
+
+/// Index of the shell called skull, if there is one inside another.
+fn skull(head: &HeadReport) -> Option<usize> {
+    head.shells.iter().position(|shell| shell.tissue.eq_ignore_ascii_case("skull")).filter(|index| *index > 0)
+}
+
+fn head_sheet(head: &HeadReport) -> HeadSheet {
+    let (title, source) = head_title(head);
+    let mut rows = vec![
+        row(
+            "head_radius_mm",
+            "Radius",
+            tenths(head.radius_mm),
+            "mm",
+            match head.radius_is_fitted {
+                true => "Radius of the scalp, fitted to the electrodes.",
+                false => "Radius of the scalp, set by hand or the standard one.",
+            },
+        ),
+        row(
+            "head_centre_mm",
+            "Centre",
+            triple(head.centre_mm, tenths),
+            "mm",
+            match head.centre_is_fitted {
+                true => "Centre of the sphere in the frame of the electrode table, fitted to the electrodes.",
+                false => "Centre of the sphere in the frame of the electrode table, set by hand or the standard one.",
+            },
+        ),
         row(
             "head_fit_rms_mm",
             "Electrodes off the sphere, rms",
             tenths(head.fit_rms_mm),
             "mm",
-            "Root mean square distance of the electrodes from that sphere.",
+            "Root mean square distance of the electrodes from the sphere.",
         ),
         row(
-            "shells",
-            "Shells, outer radius and conductivity",
-            shells,
-            "",
-            "The layers of the head model, from the inside.",
+            "head_fit_max_mm",
+            "Electrode farthest off",
+            tenths(head.fit_max_mm),
+            "mm",
+            "Largest distance of an electrode from the sphere; measured heads reach 14 to 21 mm.",
         ),
-    ]
+    ];
+    for (index, shell) in head.shells.iter().enumerate() {
+        let number = index + 1;
+        rows.push(row(
+            format!("shell_{number}_outer_radius_mm"),
+            format!("{}, outer radius", shell.tissue),
+            tenths(shell.outer_radius_mm),
+            "mm",
+            "From the centre of the sphere to the outer surface of this shell.",
+        ));
+        rows.push(row(
+            format!("shell_{number}_conductivity_s_per_m"),
+            format!("{}, conductivity", shell.tissue),
+            given(shell.conductivity_s_per_m),
+            "S/m",
+            "The same in all directions.",
+        ));
+    }
+    if let (Some(skull), Some(brain)) = (skull(head), head.shells.first()) {
+        rows.push(row(
+            "brain_to_skull",
+            "Brain to skull",
+            significant(brain.conductivity_s_per_m / head.shells[skull].conductivity_s_per_m, 2),
+            "",
+            "Ratio of the two conductivities, which is not known for a person; it moves positions in and out.",
+        ));
+    }
+    HeadSheet { title, source, rows }
 }
 
-fn described(what: &str, map: &[f64], sites: &[Site], unit: MapUnit) -> String {
+fn row(
+    code: impl Into<Cow<'static, str>>,
+    label: impl Into<Cow<'static, str>>,
+    value: String,
+    unit: &'static str,
+    meaning: &'static str,
+) -> Row {
+    Row { code: code.into(), label: label.into(), value, unit, meaning }
+}
+
+fn triple(vector: Vec3, text: fn(f64) -> String) -> String {
+    vector.0.map(text).join(", ")
+}
+
+/// A unit vector; both senses of it where its sign is arbitrary.
+fn direction(vector: Vec3, arbitrary: bool) -> String {
+    let text = triple(vector, hundredths);
+    if arbitrary { format!("±({text})") } else { text }
+}
+
+fn described(what: &str, sites: &[&Site], value: fn(&Site) -> f64, unit: MapUnit) -> String {
     let unit = unit_name(unit);
     let extreme = |sign: f64| {
-        let best = (0..map.len()).reduce(|best, i| if sign * map[i] > sign * map[best] { i } else { best });
-        best.and_then(|i| {
-            let site = sites.get(i)?;
-            Some(format!("{} ({} {unit}, {})", site.label, significant(map[i], 3), region(site.direction)))
-        })
-        .unwrap_or_default()
+        let best = sites.iter().reduce(|best, site| if sign * value(site) > sign * value(best) { site } else { best });
+        best.map(|site| format!("{} ({} {unit}, {})", site.label, significant(value(site), 3), region(site.direction)))
+            .unwrap_or_default()
     };
     format!("{what}, seen from above: most positive at {}, most negative at {}.", extreme(1.0), extreme(-1.0))
 }
