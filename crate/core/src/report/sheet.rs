@@ -343,15 +343,6 @@ fn rows(map: &FittedMap, head: &HeadReport, used: usize, placed: usize) -> Vec<R
             },
         ),
     ]);
-    rows.extend(map.activation_sd.map(|sd| {
-        row(
-            "activation_sd",
-            "Standard deviation of the activation",
-            given(sd),
-            "",
-            "As given; with it strengths are comparable between the components of a table.",
-        )
-    }));
     rows.extend([
         row("head", "Head", head_title(head).0.to_owned(), "", "The shells that the position was computed in."),
         row(
@@ -370,7 +361,7 @@ fn head_title(head: &HeadReport) -> (&'static str, &'static str) {
     heads()
         .iter()
         .find(|known| head.name == Some(known.name))
-        .map_or(("Own shells", "Shells and conductivities set by hand"), |known| (known.title, known.source))
+        .map_or(("Edited shells", "Shells and conductivities set by hand"), |known| (known.title, known.source))
 }
 
 /// Index of the shell called skull, if there is one inside another.
