@@ -8,34 +8,48 @@ import { showAnswer } from "./views/answer.js";
 import { showChoice } from "./views/choice.js";
 import { showColophon } from "./views/colophon.js";
 import { need } from "./views/element.js";
+import { showExamples } from "./views/examples.js";
 import { showFailure } from "./views/failure.js";
+import { showHead } from "./views/head.js";
 import { showIntake } from "./views/intake.js";
 import { showMaps } from "./views/maps.js";
 import { showNotes } from "./views/notes.js";
 import { showNumbers } from "./views/numbers.js";
+import { showSign } from "./views/sign.js";
 import { showStatus } from "./views/status.js";
+import { showTerms } from "./views/terms.js";
 
 const session = makeSession();
 
-addEventListener("error", (event) => session.fail(event.error ?? event.message));
+addEventListener("error", (event) => {
+  // A note of the browser that a size settles in the next frame; nothing has failed.
+  if (event.message?.startsWith("ResizeObserver loop")) return;
+  session.fail(event.error ?? event.message);
+});
 addEventListener("unhandledrejection", (event) => session.fail(event.reason));
 
 writeWords(document);
 for (const show of [
   showStatus,
   showIntake,
+  showExamples,
   showFailure,
   showAnswer,
   showChoice,
   showMaps,
+  showSign,
   showNumbers,
+  showHead,
   showNotes,
   showColophon,
+  showTerms,
 ]) {
   show(session);
 }
 takeDropsAndPastes(session, need("drop", HTMLElement));
 
 startClient()
-  .then(async (client) => session.engineReady(client, await client.ask({ kind: "program" })))
+  .then(async (client) =>
+    session.engineReady(client, await client.ask({ kind: "program" }), await client.ask({ kind: "heads" })),
+  )
   .catch((error) => session.fail(error));

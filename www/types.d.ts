@@ -50,11 +50,13 @@ interface EngineSettings {
   /** Maps, counted from 0, whose sign is turned. */
   flip?: number[];
   /** Whether the maps' sign means something. */
-  polarity?: "arbitrary" | "declared";
+  polarity?: Polarity;
   /** Standard deviation of each map's activation, by the number of the map. */
   activationSd?: (number | null)[];
   assess?: string[];
 }
+
+type Polarity = "arbitrary" | "declared";
 
 interface EngineRequest {
   electrodes?: InwardContent;
@@ -224,7 +226,7 @@ interface GlueStudy {
 }
 
 interface Glue {
-  initSync(source: { module: WebAssembly.Module }): unknown;
+  initSync(source: { module: WebAssembly.Module }): { memory: WebAssembly.Memory };
   analyse(request: EngineRequest): InwardReport;
   open(request: EngineRequest): GlueStudy;
   /** What a table is, by its content. */
@@ -295,6 +297,27 @@ type WorkerMessage = WorkerTask & { id: number };
 type WorkerReply =
   { id: number; value: unknown } | { id: number; progress: FitProgress } | { id: number; fault: Fault };
 
+/** Settings as the session holds them. */
+type PageSettings = Required<Omit<EngineSettings, "head" | "assess">> & { head?: PageHead };
+
+/** What is left out is standard, or fitted to the electrodes. */
+interface PageHead {
+  shells?: ShellSpec[];
+  centre_mm?: number[];
+  radius_mm?: number;
+}
+
+/** An invented map that the page carries; without electrodes, positions are the standard ones. */
+interface Example {
+  name: string;
+  title: string;
+  line: string;
+  /** Null or none where values have no unit. */
+  unit?: MapUnit | null;
+  maps: { name: string; content: string };
+  electrodes: { name: string; content: string } | null;
+}
+
 /** One input as the session holds it. */
 interface Input {
   /** The file's name, or empty when pasted or typed. */
@@ -306,16 +329,22 @@ type InputKind = "electrodes" | "maps";
 
 type Phase = "loading" | "ready" | "busy" | "answered" | "failed";
 
+type ExampleTitle = { name: string; title: string };
+
 interface Answer {
   key: number;
   names: Record<InputKind, string | null>;
   /** The tables it was computed from. */
   inputs: Record<InputKind, Input | null>;
+  /** The invented map that it answers. */
+  example: ExampleTitle | null;
   /** The settings it was computed with. */
-  settings: EngineSettings;
+  settings: PageSettings;
   preamble: InwardReport;
   count: number;
+  /** Those from `fitted` on are of earlier settings, until they are fitted again. */
   maps: MapSummary[];
+  fitted: number;
   chosen: number;
   /** Null while the chosen map could not be fitted. */
   sheet: Sheet | null;
@@ -325,7 +354,14 @@ interface SessionState {
   phase: Phase;
   program: Program | null;
   inputs: Record<InputKind, Input | null>;
-  settings: EngineSettings;
+  settings: PageSettings;
+  /** Which settings were changed last; none when the inputs were. */
+  changed: string[];
+  heads: CatalogueHead[];
+  /** The invented map that was put in. */
+  example: ExampleTitle | null;
+  /** What the invented map has replaced. */
+  setAside: { inputs: Record<InputKind, Input | null>; settings: PageSettings } | null;
   answer: Answer | null;
   failure: Fault | null;
   /** Label of the electrode that is pointed at, wherever on the page. */

@@ -5,6 +5,8 @@
  * leaves the instance in an unknown state: it is dropped, and the next call gets a fresh one.
  */
 
+import { lacksMemory } from "./fault.js";
+
 /** @param {unknown} error @returns {error is Error & Fault} */
 function isDeliberate(error) {
   return error instanceof Error && typeof (/** @type {any} */ (error).code) === "string";
@@ -37,13 +39,24 @@ function keepRequest(request) {
   return kept;
 }
 
+/** An instance larger than this died of its size: what the engine takes at most fits into a fraction of it. */
+const VAST_BYTES = 2 ** 30;
+
 /**
- * @param {() => Glue} instantiate gives a fresh, initialised instance
+ * @param {() => WebAssembly.Module} compiled
  * @returns {Engine}
  */
-export function makeEngine(instantiate) {
+export function makeEngine(compiled) {
   /** @type {Glue | null} */
   let glue = null;
+  /** The instance's memory. @type {WebAssembly.Memory | null} */
+  let memory = null;
+
+  function instantiate() {
+    const fresh = wasmGlue();
+    memory = fresh.initSync({ module: compiled() }).memory;
+    return fresh;
+  }
 
   /**
    * Runs one call into the engine. A panic's text goes to `console.error` before the trap; it is kept for the details.
@@ -63,7 +76,17 @@ export function makeEngine(instantiate) {
     } catch (error) {
       if (isDeliberate(error)) throw error;
       glue = null;
+      const vast = memory !== null && memory.buffer.byteLength > VAST_BYTES;
+      memory = null;
       const stack = error instanceof Error ? `${error.name}: ${error.message}\n${error.stack ?? ""}` : String(error);
+      if (vast || (error instanceof Error && lacksMemory(error))) {
+        throw engineError(
+          "memory-lacking",
+          "The browser has not enough memory left for this.",
+          "Close other tabs, or split the table into several, and try again.",
+          stack,
+        );
+      }
       throw engineError(
         "engine-trap",
         "The engine stopped on an error of its own.",

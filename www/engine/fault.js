@@ -3,6 +3,14 @@
  * answer any more; it is never shown.
  */
 
+/** Browsers have no code for it, only words. @param {{ name: string, message: string }} thrown */
+export function lacksMemory({ name, message }) {
+  return (
+    ["RangeError", "InternalError", "DataCloneError", "QuotaExceededError"].includes(name) &&
+    /memory|allocat/i.test(message)
+  );
+}
+
 /** @param {unknown} error @returns {Fault} */
 export function faultOf(error) {
   const thrown = /** @type {any} */ (
@@ -19,7 +27,7 @@ export function faultOf(error) {
   }
   const details = `${thrown.name}: ${thrown.message}\n${thrown.stack ?? ""}`;
   return {
-    code: thrown.name === "AbortError" ? "given-up" : "page-error",
+    code: thrown.name === "AbortError" ? "given-up" : lacksMemory(thrown) ? "memory-lacking" : "page-error",
     message: "",
     where: null,
     hint: "",

@@ -6,9 +6,5 @@ import { compileWasm } from "./wasm.js";
 /** Everything after this one wait is synchronous. @returns {Promise<Engine>} */
 export async function openEngine() {
   const module = await compileWasm(WASM_GZIP_BASE64);
-  return makeEngine(() => {
-    const glue = wasmGlue();
-    glue.initSync({ module });
-    return glue;
-  });
+  return makeEngine(() => module);
 }

@@ -15,9 +15,7 @@ let workerModule = null;
 
 const workerEngine = makeEngine(() => {
   if (workerModule === null) throw new TypeError("the worker has no compiled module");
-  const glue = wasmGlue();
-  glue.initSync({ module: workerModule });
-  return glue;
+  return workerModule;
 });
 
 /** Requests by the page's keys; a study is opened when first asked about. @type {Map<number, EngineRequest>} */

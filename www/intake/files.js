@@ -3,6 +3,8 @@
 import { harmless } from "../text/figures.js";
 
 const SHOW_CHARACTERS = 1 << 18;
+/** The engine reads no more; a larger file need not be loaded to be refused. */
+const MOST_BYTES = 64 << 20;
 
 /** What a text field shows of an input; null when it is too long for one. @param {Input} input */
 export function shownText(input) {
@@ -12,11 +14,17 @@ export function shownText(input) {
 
 /** @param {File} file @returns {Promise<Input>} */
 export async function inputOfFile(file) {
+  if (file.size > MOST_BYTES) throw fileFault("file-large", `${file.name}: ${file.size} bytes`);
   try {
     return { name: harmless(file.name), content: new Uint8Array(await file.arrayBuffer()) };
   } catch (error) {
-    throw Object.assign(new Error(""), { code: "file-unreadable", details: String(error) });
+    throw fileFault("file-unreadable", `${file.name}: ${error}`);
   }
+}
+
+/** @param {string} code @param {string} details */
+function fileFault(code, details) {
+  return Object.assign(new Error(""), { code, details });
 }
 
 /** Puts what came in together in its places; one of a kind. @param {Input[]} inputs @param {InputKind[]} kinds */

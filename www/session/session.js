@@ -6,6 +6,7 @@
 import { makeStore } from "./store.js";
 import { faultOf } from "../engine/fault.js";
 import { pageFault } from "../text/faults.js";
+import { FIRST_SETTINGS, sentSettings, settingsForOther, withTurned, withValueAt } from "./settings.js";
 
 /** @import { EngineClient } from "../engine/pool/client.js" */
 
@@ -14,16 +15,17 @@ import { pageFault } from "../text/faults.js";
 /** @type {InputKind[]} */
 const KINDS = ["electrodes", "maps"];
 
-/** A map up to this number is kept in view when settings change. */
-const KEEP_CHOSEN = 512;
-
 export function makeSession() {
   const store = makeStore(
     /** @type {SessionState} */ ({
       phase: "loading",
       program: null,
       inputs: { electrodes: null, maps: null },
-      settings: { mapUnit: "relative" },
+      settings: FIRST_SETTINGS,
+      changed: [],
+      heads: [],
+      example: null,
+      setAside: null,
       answer: null,
       failure: null,
       pointed: null,
@@ -69,7 +71,7 @@ export function makeSession() {
   /** Asks the engine about the present inputs; an older question nobody waits for any more is given up. */
   async function ask() {
     if (client === null) return;
-    const { inputs, settings, answer: before } = store.read();
+    const { inputs, settings, example, answer: before } = store.read();
     // The worker has read these tables for the present answer: it needs no more than the other settings.
     const from = before?.inputs === inputs ? before.key : null;
     dropPending(from === null);
@@ -79,7 +81,7 @@ export function makeSession() {
       return;
     }
     /** @type {EngineRequest} */
-    const request = { maps: inputs.maps.content, settings };
+    const request = { maps: inputs.maps.content, settings: sentSettings(settings) };
     if (inputs.electrodes !== null) request.electrodes = inputs.electrodes.content;
     const key = client.name(request, from);
     pending = key;
@@ -88,10 +90,17 @@ export function makeSession() {
       const { preamble, count } = await client.ask({ kind: "open", key });
       if (pending !== key) return;
       const names = { electrodes: inputs.electrodes?.name ?? null, maps: inputs.maps.name };
-      // The same tables under other settings: the same map stays in view, unless it would have to be waited for.
-      const same = before !== null && before.count === count && before.names.maps === names.maps;
-      const chosen = same && before.chosen < KEEP_CHOSEN ? before.chosen : 0;
-      await fitMaps({ key, names, inputs, settings, preamble, count, maps: [], chosen, sheet: null });
+      /** @type {Answer} */
+      const draft = { key, names, inputs, example, settings, preamble, count, maps: [], fitted: 0, chosen: 0, sheet: null };
+      // The same tables under other settings: the same map stays in view and is answered before the others.
+      if (before !== null && before.count === count && before.names.maps === names.maps) {
+        draft.maps = [...before.maps];
+        draft.chosen = before.chosen;
+        // A map that cannot be fitted under these settings is found out below.
+        const sheet = await client.ask({ kind: "sheet", key, index: draft.chosen }).catch(() => null);
+        if (sheet !== null) present(draft, sheet);
+      }
+      await fitMaps(draft);
     } catch (fault) {
       if (pending === key) {
         pending = null;
@@ -103,37 +112,48 @@ export function makeSession() {
     }
   }
 
-  /** @param {Answer} draft becomes the answer as soon as one of its maps is fitted */
+  /** Fits every map. @param {Answer} draft becomes the answer as soon as one of its maps is fitted, if it is not yet */
   async function fitMaps(draft) {
-    if (client === null) return;
+    if (client === null || (pending !== draft.key && store.read().answer?.key !== draft.key)) return;
     const { key, maps } = draft;
     /** @type {Promise<void> | null} */
     let shown = null;
     await client.ask({ kind: "fitAll", key }, (step) => {
-      maps.length = step.done - step.maps.length;
-      maps.push(...step.maps);
+      const from = step.done - step.maps.length;
+      step.maps.forEach((map, at) => {
+        maps[from + at] = map;
+      });
+      draft.fitted = step.done;
       const progress = step.done < step.total ? { done: step.done, total: step.total } : null;
       const answer = store.read().answer;
-      if (answer?.key === key) store.write({ answer: { ...answer }, progress });
-      else if (pending === key) store.write({ progress });
-      const kept = maps[draft.chosen];
-      const first = maps.findIndex((map) => "rv" in map);
+      if (answer?.key === key) return store.write({ answer: { ...answer, fitted: step.done }, progress });
+      if (pending !== key) return;
+      store.write({ progress });
+      const kept = draft.chosen < step.done ? maps[draft.chosen] : undefined;
+      const first = maps.slice(0, step.done).findIndex((map) => "rv" in map);
       const fitted = kept !== undefined && "rv" in kept ? draft.chosen : first;
-      if (shown === null && kept !== undefined && fitted >= 0) shown = show({ ...draft, chosen: fitted });
+      if (shown !== null || kept === undefined || fitted < 0) return;
+      shown = show({ ...draft, chosen: fitted });
+      // Given up together with the fits, nobody asks for it below.
+      shown.catch(() => {});
     });
     if (shown !== null) return shown;
     const first = maps[0];
-    if (first !== undefined && "error" in first) throw first.error;
+    if (pending === key && first !== undefined && "error" in first) throw first.error;
   }
 
   /** @param {Answer} draft */
   async function show(draft) {
     if (client === null || pending !== draft.key) return;
-    const sheet = await client.ask({ kind: "sheet", key: draft.key, index: draft.chosen });
+    present(draft, await client.ask({ kind: "sheet", key: draft.key, index: draft.chosen }));
+  }
+
+  /** @param {Answer} draft becomes the answer, unless nobody waits for it any more @param {Sheet} sheet */
+  function present(draft, sheet) {
     if (pending !== draft.key) return;
     pending = null;
     const before = store.read().answer;
-    if (before !== null) client.forget(before.key);
+    if (before !== null) client?.forget(before.key);
     store.write({ phase: "answered", answer: { ...draft, sheet } });
   }
 
@@ -142,11 +162,16 @@ export function makeSession() {
     watch: store.watch,
     fail,
 
-    /** The engine has answered its first call. @param {EngineClient} ready @param {Program} program */
-    engineReady(ready, program) {
+    /**
+     * The engine has answered its first calls.
+     * @param {EngineClient} ready
+     * @param {Program} program
+     * @param {CatalogueHead[]} heads
+     */
+    engineReady(ready, program, heads) {
       client = ready;
       announce(ready);
-      store.write({ phase: store.read().phase === "failed" ? "failed" : "ready", program });
+      store.write({ phase: store.read().phase === "failed" ? "failed" : "ready", program, heads });
       if (store.read().inputs.maps !== null) ask();
     },
 
@@ -165,32 +190,72 @@ export function makeSession() {
      * @param {Partial<Record<InputKind, Input | null>>} inputs
      */
     put(inputs) {
-      const { inputs: before, settings } = store.read();
-      // Electrodes were left out of the former table; typing goes on with the same one.
-      const other = KINDS.some((kind) => kind in inputs && inputs[kind]?.name !== before[kind]?.name);
+      const { inputs: before, settings, example } = store.read();
+      // Typing goes on with the same table; only another name makes it another one.
+      const other = KINDS.filter((kind) => kind in inputs && inputs[kind]?.name !== before[kind]?.name);
+      const kept = settingsForOther(settings, other);
       store.write({
         inputs: { ...before, ...inputs },
-        settings: other ? { ...settings, exclude: [] } : settings,
+        settings: example === null ? kept : { ...kept, mapUnit: FIRST_SETTINGS.mapUnit },
+        changed: [],
+        example: null,
+        setAside: null,
       });
       ask();
     },
 
-    /** @param {EngineSettings} settings */
-    set(settings) {
-      store.write({ settings: { ...store.read().settings, ...settings } });
+    /** Shows an invented map; what was put in before can be taken back. @param {Example} example */
+    show(example) {
+      const { inputs, settings, example: before, setAside } = store.read();
+      const own = before === null && KINDS.some((kind) => inputs[kind] !== null);
+      store.write({
+        inputs: { electrodes: example.electrodes, maps: example.maps },
+        settings: { ...settingsForOther(settings, KINDS), mapUnit: example.unit ?? FIRST_SETTINGS.mapUnit },
+        changed: [],
+        example: { name: example.name, title: example.title },
+        setAside: own ? { inputs, settings } : setAside,
+      });
       ask();
+    },
+
+    /** Takes back what an invented map has replaced. */
+    takeBack() {
+      const { setAside } = store.read();
+      if (setAside === null) return;
+      store.write({ ...setAside, changed: [], example: null, setAside: null });
+      ask();
+    },
+
+    /** @param {Partial<PageSettings>} settings */
+    set(settings) {
+      store.write({ settings: { ...store.read().settings, ...settings }, changed: Object.keys(settings) });
+      ask();
+    },
+
+    /** Turns the sign of the map that is shown, or turns it back. */
+    turnSign() {
+      const { answer, settings } = store.read();
+      if (answer !== null) this.set({ flip: withTurned(settings.flip, answer.chosen) });
+    },
+
+    /** Standard deviation of the shown map's activation. @param {number | null} value */
+    setActivation(value) {
+      const { answer, settings } = store.read();
+      if (answer !== null) this.set({ activationSd: withValueAt(settings.activationSd, answer.chosen, value) });
     },
 
     /** Leaves an electrode out or takes it back. @param {string} label @param {boolean} used */
     use(label, used) {
-      const others = (store.read().settings.exclude ?? []).filter((one) => one !== label);
+      const others = store.read().settings.exclude.filter((one) => one !== label);
       this.set({ exclude: used ? others : [...others, label] });
     },
 
     /** Back to the settings of the answer that is shown. */
     restore() {
       const { answer } = store.read();
-      if (answer !== null) this.set(answer.settings);
+      if (answer === null) return;
+      store.write({ settings: answer.settings, changed: [] });
+      ask();
     },
 
     /** Marks an electrode everywhere. @param {string | null} label */

@@ -4,15 +4,31 @@
 const PAGE_FAULTS = {
   "wasm-unavailable": {
     message: "This browser does not let the page run WebAssembly, which the computation needs.",
-    hint: "Open the file in a current browser, or switch off a lock-down mode for it.",
+    hint: "Open the file in a current browser, or switch off a lockdown mode or a policy that forbids WebAssembly.",
   },
   "worker-unavailable": {
     message: "This browser does not let the page start a worker, where the computation runs.",
     hint: "Open the file in a current browser, outside of a frame that forbids scripts.",
   },
+  "unpacking-unavailable": {
+    message: "This browser cannot unpack the engine that the page carries: it lacks DecompressionStream.",
+    hint: "Open the file in a current browser; those of 2023 and later can.",
+  },
+  "worker-lost": {
+    message: "The browser ended the worker in which the computation ran, perhaps for lack of memory.",
+    hint: "Close other tabs or split a large table, then give the map again: it gets a fresh worker.",
+  },
+  "memory-lacking": {
+    message: "The browser has not enough memory left for this.",
+    hint: "Close other tabs, or split the table into several, and try again.",
+  },
   "file-unreadable": {
     message: "The browser could not read that file.",
-    hint: "It may have been moved or be too large. Pick it again, or paste its content.",
+    hint: "It may have been moved, renamed or locked. Pick it again, or paste its content.",
+  },
+  "file-large": {
+    message: "That file is larger than 64 MiB, the most that is read.",
+    hint: "Split the table, or leave out columns that are not needed.",
   },
   "inputs-same-kind": {
     message: "Both files read like the same kind of table.",

@@ -26,3 +26,13 @@ export function harmless(name) {
 export function stretchText(factor) {
   return `×${NO_BREAK}${Number(factor.toPrecision(2))}`;
 }
+
+/** What a person has typed as a number; a comma stands for a point. @param {string} text */
+export function enteredNumber(text) {
+  return text.trim() === "" ? Number.NaN : Number(text.trim().replace(",", ".").replace(MINUS, "-"));
+}
+
+/** A number as it stands in an entry field. @param {number} value */
+export function enteredText(value) {
+  return String(Number(value.toPrecision(6)));
+}

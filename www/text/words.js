@@ -7,23 +7,29 @@ const WORDS = {
   private: "Nothing leaves this machine",
   skip: "Skip to the answer",
 
-  "empty.what": "Does one equivalent dipole explain this scalp map, where would it lie, and what is left over?",
+  "empty.what": "Does one equivalent dipole explain a scalp map, where would it lie, and what is left over?",
   "empty.how":
     "Give a map as a table: paste it, drop it anywhere on this page, or pick a file. The answer comes by itself.",
   "empty.private": "Everything is computed in this tab. Nothing is sent, stored or looked up.",
+  "empty.examples": "Begin with an invented map",
+  "empty.tables": "Or with tables like these",
   "empty.maps": "A map: label and value, one electrode a line; further columns are further maps",
   "empty.electrodes": "Electrode positions, if measured: label, x, y, z",
 
   intake: "Input",
   "intake.change": "Change input",
   "intake.fold": "Fold away",
+  examples: "Invented maps to try",
+  "examples.now": "shown now",
+  "set-aside.back": "Take them back",
   maps: "Map",
   "maps.hint": "Label and value, one electrode a line. More columns are more maps.",
   electrodes: "Electrodes",
   "electrodes.hint": "Label, x, y, z, or labels alone. Without a table: standard positions by the map’s labels.",
   pick: "Pick a file",
   clear: "Clear",
-  unit: "Unit of the map",
+  unit: "Unit of the maps",
+  "unit.hint": "Holds for every map of the table. Without a unit, strengths are relative.",
   "unit.relative": "relative",
   "unit.uV": "µV",
   "unit.V": "V",
@@ -64,6 +70,13 @@ const WORDS = {
   "map.left": "L",
   "map.right": "R",
   "map.above": "seen from above",
+  flip: "Turn the sign",
+  polarity: "Polarity",
+  "polarity.arbitrary": "arbitrary: an axis",
+  "polarity.declared": "declared: an arrow",
+  "sign.arbitrary": "A component’s sign is arbitrary, so the dipole has an axis and no direction until you declare the polarity.",
+  "sign.declared": "The sign as shown is declared to be the true one, for every map of the table.",
+  "sign.turned": "The sign of this map is turned; turn it again for the sign of the table.",
   "scale.shared": "One scale for all three",
   "scale.lines": "Lines: solid positive, dashed negative",
 
@@ -77,6 +90,39 @@ const WORDS = {
   "copy.failed": "The browser does not allow copying here",
   json: "Download report (JSON)",
 
+  activation: "Standard deviation of the activation",
+  "activation.meaning": "Of this component, in the units that go with its map. With it, the strength is that of one standard deviation and compares between components.",
+  "activation.clear": "Clear",
+  "activation.invalid": "A number above zero, please, with a point for decimals.",
+
+  head: "Head:",
+  "head.numbers": "Numbers of the head",
+  "head.change": "Change the head",
+  "head.choices": "Published heads",
+  "head.edited": "Edited by hand",
+  "head.edited-hint": "Shells of your own, below.",
+  "head.shells": "Shells, from the inside out",
+  "head.shells-hint": "Ratio: outer radius over that of the scalp, rising to 1. Conductivity in siemens per metre.",
+  "head.tissue": "Tissue",
+  "head.ratio": "Ratio",
+  "head.conductivity": "S/m",
+  "head.remove": "Remove",
+  "head.add": "Add a shell",
+  "head.new": "new shell",
+  "head.sphere": "Sphere",
+  "head.sphere-hint": "In the table’s frame, in millimetres. What is left empty is fitted to the electrodes.",
+  "head.x": "Centre x",
+  "head.y": "Centre y",
+  "head.z": "Centre z",
+  "head.radius": "Radius",
+  "head.standard": "Back to the standard head",
+  "head.fitted": "Back to the fitted sphere",
+  "head.shell-incomplete": "Each shell needs a ratio and a conductivity, as numbers with a point for decimals.",
+  "head.centre-incomplete": "A centre needs all three numbers, x, y and z; leave all three empty to have it fitted.",
+  "head.radius-invalid": "The radius is not a number.",
+
+  glossary: "Words on this sheet",
+
   notes: "What was assumed",
   "notes.none": "Nothing beyond the standard head.",
   "note.warning": "Note well",
@@ -88,6 +134,7 @@ const WORDS = {
 
   "failure.details": "Details to copy",
   "failure.copy": "Copy details",
+  "failure.restore": "Back to the settings of the answer",
   "failure.dismiss": "Close",
 
   notices: "Licences of what is built in",
@@ -116,11 +163,23 @@ export function keptText(subject) {
 }
 
 /** Which map of which inputs. @param {Answer} answer */
-export function subjectText({ names, maps, chosen }) {
+export function subjectText({ names, maps, chosen, example }) {
   const map = names.maps || word("slot.pasted");
   const electrodes =
     names.electrodes === null ? word("slot.standard") : names.electrodes || word("slot.pasted-electrodes");
-  return [maps[chosen]?.name, map, electrodes].filter((part) => part).join(" · ");
+  const invented = example === null ? "" : `invented example “${example.title}”`;
+  return [maps[chosen]?.name, map, electrodes, invented].filter((part) => part).join(" · ");
+}
+
+/** @param {Record<InputKind, Input | null>} inputs that an invented map has replaced */
+export function setAsideText({ maps, electrodes }) {
+  const names = [maps, electrodes].filter((input) => input !== null).map((input) => input.name || word("slot.pasted"));
+  return `Your own data (${names.join(", ")}) are set aside while an invented map is shown.`;
+}
+
+/** @param {string} part @param {number} shell counted from 1 */
+export function shellLabel(part, shell) {
+  return `${word(`head.${part}`)}, shell ${shell}`;
 }
 
 /** @param {string} stretch the left-over map's own factor, or empty */

@@ -3,6 +3,7 @@
 import { typeset } from "../text/figures.js";
 import { subjectText } from "../text/words.js";
 import { make, need } from "./element.js";
+import { dropOrphanedNote, withTerms } from "./terms.js";
 
 /** @import { Session } from "../session/session.js" */
 
@@ -34,9 +35,15 @@ export function showAnswer(session) {
       need("subject", HTMLElement).textContent = subjectText(answer);
       const map = answer.maps[answer.chosen];
       const text = sheet?.sentence ?? (map !== undefined && "error" in map ? `${map.name}: ${map.error.message}` : "");
+      const told = new Set();
       sentence.replaceChildren(
-        ...splitSentence(text).map((part, at) => make("span", typeset(part), { class: at === 0 ? "first" : "rest" })),
+        ...splitSentence(text).map((part, at) => {
+          const element = make("span", "", { class: at === 0 ? "first" : "rest" });
+          element.append(...withTerms(typeset(part), told));
+          return element;
+        }),
       );
+      dropOrphanedNote();
       hint.textContent = !sheet && map !== undefined && "error" in map ? map.error.hint : "";
       hint.hidden = hint.textContent === "";
     },

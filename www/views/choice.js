@@ -28,7 +28,7 @@ export function showChoice(session) {
   const next = need("map-next", HTMLButtonElement);
   const number = need("map-number", HTMLInputElement);
   /** What is listed: the answer's key, and the maps from one index up to another. */
-  let listed = { key: 0, from: 0, to: 0 };
+  let listed = { key: 0, from: 0, to: 0, fitted: 0 };
 
   list.addEventListener("change", () => session.choose(Number(list.value)));
   previous.addEventListener("click", () => session.choose((session.read().answer?.chosen ?? 0) - 1));
@@ -36,14 +36,19 @@ export function showChoice(session) {
   number.addEventListener("change", () => session.choose(number.valueAsNumber - 1));
 
   /** @param {Answer} answer */
-  function listMaps({ key, maps, count, chosen }) {
+  function listMaps({ key, maps, count, chosen, fitted }) {
     const from = BLOCK * Math.floor(chosen / BLOCK);
     const end = Math.min(from + BLOCK, count);
     if (key !== listed.key || from !== listed.from || listed.to > maps.length) {
       list.replaceChildren();
       if (from > 0) list.append(optionElement(from - 1, furtherText(from, false)));
       if (end < count) list.append(optionElement(end, furtherText(count - end, true)));
-      listed = { key, from, to: from };
+      listed = { key, from, to: from, fitted: Math.max(from, fitted) };
+    }
+    // Those of earlier settings are rewritten as they are fitted again.
+    for (; listed.fitted < Math.min(listed.to, fitted); listed.fitted++) {
+      const option = list.querySelector(`option[value="${listed.fitted}"]`);
+      if (option !== null) option.textContent = optionText(maps[listed.fitted]);
     }
     const last = end < count ? list.lastElementChild : null;
     for (; listed.to < Math.min(end, maps.length); listed.to++) {

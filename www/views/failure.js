@@ -8,12 +8,27 @@ import { need } from "./element.js";
 
 /** @import { Session } from "../session/session.js" */
 
+/** @param {SessionState} state */
+function comesFromHead({ answer, changed }) {
+  return answer !== null && changed.includes("head");
+}
+
+/** Whether someone types, or works where the failure is said too. @param {Element | null} element */
+function underHands(element) {
+  return element !== null && element.matches("textarea, #electrode-list *, .disc, .head-edit *");
+}
+
 /** @param {Session} session */
 export function showFailure(session) {
   const panel = need("failure", HTMLElement);
   const details = need("failure-details", HTMLElement);
   const copy = need("copy-details", HTMLButtonElement);
   copy.addEventListener("click", async () => confirmOn(copy, await copyText(details.textContent ?? "")));
+  const restore = need("failure-restore", HTMLButtonElement);
+  restore.addEventListener("click", () => {
+    session.restore();
+    need("main", HTMLElement).focus({ preventScroll: true });
+  });
   need("failure-dismiss", HTMLButtonElement).addEventListener("click", () => {
     session.dismiss();
     need("main", HTMLElement).focus();
@@ -23,13 +38,16 @@ export function showFailure(session) {
     (state) => state.failure,
     (failure, state) => {
       panel.hidden = failure === null;
+      // What comes from the head is said beside the head.
+      const place = need(failure !== null && comesFromHead(state) ? "head-failure" : "failure-place", HTMLElement);
+      if (panel.parentElement !== place) place.append(panel);
+      restore.hidden = state.answer === null || state.settings === state.answer.settings;
       need("failure-message", HTMLElement).textContent = failure?.message ?? "";
       need("failure-hint", HTMLElement).textContent = failure?.hint ?? "";
       const kept = need("failure-kept", HTMLElement);
       kept.hidden = state.answer === null;
       kept.textContent = state.answer === null ? "" : keptText(subjectText(state.answer));
-      if (failure !== null && !(document.activeElement instanceof HTMLTextAreaElement))
-        panel.scrollIntoView({ block: "nearest" });
+      if (failure !== null && !underHands(document.activeElement)) panel.scrollIntoView({ block: "nearest" });
       details.textContent = failure === null ? "" : detailsText(failure, state.program);
     },
   );

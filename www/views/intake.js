@@ -89,6 +89,13 @@ function showUnit(session) {
   unit.addEventListener("change", (event) => {
     if (event.target instanceof HTMLInputElement) session.set({ mapUnit: /** @type {MapUnit} */ (event.target.value) });
   });
+  session.watch(
+    (state) => state.settings.mapUnit,
+    (held) => {
+      for (const choice of unit.querySelectorAll("input")) choice.checked = choice.value === held;
+      need("unit-loaded", HTMLElement).textContent = word(`unit.${held}`);
+    },
+  );
 }
 
 /**

@@ -3,14 +3,15 @@
 import { typeset } from "../text/figures.js";
 import { word } from "../text/words.js";
 import { make, need } from "./element.js";
+import { dropOrphanedNote, withTerms } from "./terms.js";
 
 /** @import { Session } from "../session/session.js" */
 
-/** @param {ReportNote} note */
-function noteElement(note) {
+/** @param {ReportNote} note @param {Set<string>} told */
+function noteElement(note, told) {
   const element = make("li", "", { class: `note-${note.severity}` });
   if (note.severity === "warning") element.append(make("strong", `${word("note.warning")}: `));
-  element.append(typeset(note.message));
+  element.append(...withTerms(typeset(note.message), told));
   return element;
 }
 
@@ -19,6 +20,12 @@ export function showNotes(session) {
   const list = need("notes", HTMLUListElement);
   session.watch(
     (state) => state.answer?.preamble.notes,
-    (notes) => list.replaceChildren(...(notes?.length ? notes.map(noteElement) : [make("li", word("notes.none"))])),
+    (notes) => {
+      const told = new Set();
+      list.replaceChildren(
+        ...(notes?.length ? notes.map((note) => noteElement(note, told)) : [make("li", word("notes.none"))]),
+      );
+      dropOrphanedNote();
+    },
   );
 }

@@ -1,34 +1,87 @@
-/** The numbers, each with its unit and a line on its meaning; a copy of the table and the whole report. */
+/**
+ * The numbers, each with its unit and a line on its meaning; the activation's standard deviation is entered beside
+ * the strength it scales. A copy of the table and the whole report.
+ */
 
 import { copyText, saveBlob } from "../export/out.js";
 import { tableText } from "../export/table.js";
-import { typeset } from "../text/figures.js";
+import { enteredNumber, enteredText } from "../text/figures.js";
 import { word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { make, need } from "./element.js";
+import { writeRows } from "./rows.js";
+import { withTerms } from "./terms.js";
 
 /** @import { Session } from "../session/session.js" */
 
 const REPORT_NAME = "inward-report.json";
-/** Longer values take the place of their meaning, which then stands below. */
-const ONE_LINE = 26;
 
-/** @param {SheetRow} row */
-function rowElement(row) {
-  const element = make("tr", "");
-  element.append(make("th", row.label, { scope: "row" }));
-  if (row.value.length > ONE_LINE) {
-    const both = make("td", "", { class: "long", colspan: "2" });
-    both.append(
-      ...row.value.split("; ").map((part) => make("div", typeset(part))),
-      make("div", row.meaning, { class: "small" }),
-    );
-    element.append(both);
-  } else {
-    const value = make("td", typeset(row.value), { class: "value" });
-    if (row.unit !== "") value.append(make("span", `\u00a0${row.unit}`, { class: "unit-of" }));
-    element.append(value, make("td", typeset(row.meaning), { class: "meaning small" }));
-  }
+/** @param {Session} session */
+function activationRow(session) {
+  const element = make("tr", "", { class: "setting" });
+  const heading = make("th", "", { scope: "row" });
+  const label = make("label", word("activation"), { for: "activation-sd" });
+  heading.append(label);
+  const field = /** @type {HTMLInputElement} */ (
+    make("input", "", {
+      type: "text",
+      inputmode: "decimal",
+      autocomplete: "off",
+      id: "activation-sd",
+      "aria-describedby": "activation-meaning activation-fault",
+    })
+  );
+  const clear = /** @type {HTMLButtonElement} */ (
+    make("button", word("activation.clear"), { type: "button", class: "quiet", id: "activation-sd-clear" })
+  );
+  const value = make("td", "", { class: "value" });
+  value.append(field, clear);
+  const meaning = make("td", "", { class: "meaning small" });
+  const words = make("span", "", { id: "activation-meaning" });
+  words.append(...withTerms(word("activation.meaning")));
+  const fault = make("p", "", { class: "entry-fault", id: "activation-fault", role: "status" });
+  meaning.append(words, fault);
+  element.append(heading, value, meaning);
+
+  /** @param {boolean} good */
+  const judge = (good) => {
+    field.setAttribute("aria-invalid", String(!good));
+    fault.textContent = good ? "" : word("activation.invalid");
+  };
+  field.addEventListener("change", () => {
+    const entered = enteredNumber(field.value);
+    const good = field.value.trim() === "" || (Number.isFinite(entered) && entered > 0);
+    judge(good);
+    if (good) session.setActivation(field.value.trim() === "" ? null : entered);
+  });
+  clear.addEventListener("click", () => {
+    judge(true);
+    field.value = "";
+    field.focus();
+    session.setActivation(null);
+  });
+  session.watch(
+    ({ answer, settings }) => (answer === null ? null : (settings.activationSd[answer.chosen] ?? null)),
+    (held) => {
+      clear.hidden = held === null;
+    },
+  );
+  session.watch(
+    ({ answer }) => answer?.chosen,
+    () => {
+      const { answer, settings } = session.read();
+      const held = answer === null ? null : (settings.activationSd[answer.chosen] ?? null);
+      field.value = held === null ? "" : enteredText(held);
+      judge(true);
+    },
+  );
+  session.watch(
+    ({ settings }) => settings.activationSd,
+    (values) => {
+      const held = values[session.read().answer?.chosen ?? 0] ?? null;
+      if (document.activeElement !== field) field.value = held === null ? "" : enteredText(held);
+    },
+  );
   return element;
 }
 
@@ -37,6 +90,7 @@ export function showNumbers(session) {
   const body = need("numbers", HTMLTableElement).tBodies[0];
   const copy = need("copy-table", HTMLButtonElement);
   const download = need("download-json", HTMLButtonElement);
+  const own = { after: "strength", element: activationRow(session) };
   let saving = false;
 
   copy.addEventListener("click", async () => {
@@ -55,6 +109,6 @@ export function showNumbers(session) {
 
   session.watch(
     (state) => state.answer?.sheet,
-    (sheet) => body.replaceChildren(...(sheet?.rows ?? []).map(rowElement)),
+    (sheet) => writeRows(body, sheet?.rows ?? [], own),
   );
 }

@@ -13,6 +13,9 @@ function statusText(state) {
   return word(`state.${state.phase}`);
 }
 
+/** Quicker work beside an answer is not worth a word. */
+const QUICK_MS = 300;
+
 /** @param {Session} session */
 export function showStatus(session) {
   const status = need("status", HTMLElement);
@@ -29,10 +32,23 @@ export function showStatus(session) {
       document.documentElement.dataset.state = phase;
     },
   );
-  session.watch(
-    (state) => state,
-    (_, state) => {
-      const working = state.phase === "busy" || state.progress !== null;
+  let slow = false;
+  let timer = 0;
+  const show = () => {
+      const state = session.read();
+      const busy = state.phase === "busy" || state.progress !== null;
+      if (!busy) {
+        clearTimeout(timer);
+        timer = 0;
+        slow = false;
+      } else if (timer === 0) {
+        timer = setTimeout(() => {
+          slow = true;
+          show();
+        }, QUICK_MS);
+      }
+      const working = busy && (slow || state.answer === null);
+      if (busy && !working) return;
       const text = statusText(state);
       // Counts change many times a second; a screen reader hears of the beginning and the end.
       status.setAttribute("aria-live", state.progress === null ? "polite" : "off");
@@ -42,6 +58,6 @@ export function showStatus(session) {
       progress.hidden = !working;
       if (state.progress === null) progress.removeAttribute("value");
       else progress.value = state.progress.done / state.progress.total;
-    },
-  );
+  };
+  session.watch((state) => state, show);
 }

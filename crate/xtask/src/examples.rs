@@ -28,6 +28,7 @@ pub fn examples(folder: &Path) -> Result<String> {
             "name": text("name")?,
             "title": text("title")?,
             "line": text("line")?,
+            "unit": example["unit"],
             "maps": file("maps")?,
             "electrodes": file("electrodes")?,
         });

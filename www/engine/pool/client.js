@@ -21,6 +21,8 @@ function clientFault(code, details) {
 export function makeClient(module, startWorker) {
   /** @type {Worker | null} */
   let worker = null;
+  /** Whether the browser lets workers run at all. */
+  let answered = false;
   let nextId = 1;
   let nextKey = 1;
   /** @type {Map<number, Waiting>} */
@@ -41,6 +43,7 @@ export function makeClient(module, startWorker) {
   /** @param {Worker} from @param {WorkerReply} reply */
   function receive(from, reply) {
     const one = waiting.get(reply.id);
+    answered = true;
     if (from !== worker || one === undefined) return;
     if ("progress" in reply) return one.progress?.(reply.progress);
     waiting.delete(reply.id);
@@ -54,7 +57,7 @@ export function makeClient(module, startWorker) {
     const lost = [...waiting.values()];
     waiting.clear();
     stop();
-    for (const one of lost) one.reject(clientFault("worker-unavailable", details));
+    for (const one of lost) one.reject(clientFault(answered ? "worker-lost" : "worker-unavailable", details));
   }
 
   function ensureWorker() {

@@ -1,6 +1,7 @@
 /** Starts the engine of the page from what the file carries: compiles once, hands the module to workers. */
 
 import { compileWasm } from "../wasm.js";
+import { lacksMemory } from "../fault.js";
 import { makeClient } from "./client.js";
 
 /** @param {string} id */
@@ -27,12 +28,16 @@ function workerAddresses() {
 }
 
 export async function startClient() {
+  if (typeof WebAssembly === "undefined") throw unavailable("wasm-unavailable", "WebAssembly is not defined");
+  if (typeof DecompressionStream === "undefined")
+    throw unavailable("unpacking-unavailable", "DecompressionStream is not defined");
   /** @type {WebAssembly.Module} */
   let module;
   try {
     module = await compileWasm(carriedText("wasm"));
   } catch (error) {
-    throw unavailable("wasm-unavailable", error);
+    const code = error instanceof Error && lacksMemory(error) ? "memory-lacking" : "wasm-unavailable";
+    throw unavailable(code, error);
   }
   try {
     const script = new Blob([carriedText("worker")], { type: "text/javascript" });

@@ -1,0 +1,55 @@
+/** What becomes of settings: what is sent of them, and what of them outlives other inputs. */
+
+/** The settings of a page without inputs. @type {PageSettings} */
+export const FIRST_SETTINGS = {
+  mapUnit: "relative",
+  exclude: [],
+  flip: [],
+  polarity: "arbitrary",
+  activationSd: [],
+};
+
+/** Settings as the engine takes them: what has its default is left out. @param {PageSettings} settings */
+export function sentSettings(settings) {
+  const { exclude, flip, polarity, activationSd, ...sent } = settings;
+  /** @type {EngineSettings} */
+  const request = sent;
+  if (exclude.length > 0) request.exclude = exclude;
+  if (flip.length > 0) request.flip = flip;
+  if (polarity !== "arbitrary") request.polarity = polarity;
+  if (activationSd.some((value) => value !== null)) request.activationSd = activationSd;
+  return request;
+}
+
+/**
+ * What of the settings outlives another table. Electrodes were left out of the former one; signs and activations
+ * belong to its maps, a centre and a radius to its electrodes.
+ * @param {PageSettings} settings
+ * @param {InputKind[]} kinds of the tables that are others now
+ * @returns {PageSettings}
+ */
+export function settingsForOther(settings, kinds) {
+  if (kinds.length === 0) return settings;
+  const kept = { ...settings, exclude: FIRST_SETTINGS.exclude };
+  if (kinds.includes("maps")) Object.assign(kept, { flip: [], activationSd: [] });
+  if (kinds.includes("electrodes")) {
+    delete kept.head;
+    if (settings.head?.shells !== undefined) kept.head = { shells: settings.head.shells };
+  }
+  return kept;
+}
+
+/** @param {number[]} flip @param {number} index @returns {number[]} */
+export function withTurned(flip, index) {
+  const others = flip.filter((one) => one !== index);
+  return others.length < flip.length ? others : [...others, index].sort((a, b) => a - b);
+}
+
+/** @param {(number | null)[]} values @param {number} index @param {number | null} value @returns {(number | null)[]} */
+export function withValueAt(values, index, value) {
+  const next = [...values];
+  while (next.length < index) next.push(null);
+  next[index] = value;
+  while (next.length > 0 && next.at(-1) === null) next.pop();
+  return next;
+}
