@@ -46,6 +46,11 @@ interface ReportHead {
 interface EngineSettings {
   mapUnit?: MapUnit;
   exclude?: string[];
+  interpolated?: string[];
+  axes?: string | null;
+  mirror?: boolean | null;
+  unusualHead?: boolean;
+  laplacian?: boolean | null;
   head?: HeadSettings | null;
   /** Maps, counted from 0, whose sign is turned. */
   flip?: number[];

@@ -48,7 +48,7 @@ const KEYS = {
   report: "electrodes format head inputs maps notes program settings version",
   program: "build name version",
   input: "name sha256",
-  head: "centre_is_fitted centre_mm fit_max_mm fit_rms_mm name radius_is_fitted radius_mm shells",
+  head: "axes centre_is_fitted centre_mm fit_max_mm fit_rms_mm name radius_is_fitted radius_mm shells unusual",
   shell: "conductivity_s_per_m outer_radius_mm tissue",
   electrode: "label position_mm used",
   map: "activation_sd adjusted_rv degrees_of_freedom dipole fit flipped measured name projected residual residual_variance variance_explained",
@@ -179,7 +179,7 @@ test("what is absent is null, never missing", () => {
 
 test("settings that are undefined are as good as absent", () => {
   const plain = engine.analyse({ electrodes, maps });
-  const keys = ["head", "exclude", "mapUnit", "flip", "polarity", "activationSd", "assess"];
+  const keys = ["head", "exclude", "interpolated", "axes", "mirror", "unusualHead", "laplacian", "mapUnit", "flip", "polarity", "activationSd", "assess"];
   const settings = { ...Object.fromEntries(keys.map((key) => [key, undefined])) };
   assert.deepEqual(engine.analyse({ electrodes, maps, settings }), plain);
   assert.deepEqual(engine.analyse({ electrodes, maps, settings: { head: { radius_mm: undefined } } }).maps, plain.maps);

@@ -64,6 +64,33 @@ fn refused(file: &[u8]) -> ErrorReport {
     (&outcome.expect("an error")).into()
 }
 
+/// A table with labels that tell nothing.
+fn numbered(table: &str) -> String {
+    let line = |(k, line): (usize, &str)| match line.split_once('\t') {
+        Some((_, rest)) if k > 0 => format!("S{k}\t{rest}\n"),
+        _ => format!("{line}\n"),
+    };
+    table.lines().enumerate().map(line).collect()
+}
+
+/// A table with more after each label.
+fn suffixed(table: &str, suffix: &str) -> String {
+    let line = |(k, line): (usize, &str)| match line.split_once('\t') {
+        Some((label, rest)) if k > 0 => format!("{label}{suffix}\t{rest}\n"),
+        _ => format!("{line}\n"),
+    };
+    table.lines().enumerate().map(line).collect()
+}
+
+/// A table with zeros at some labels.
+fn zeroed(table: &str, labels: &[&str]) -> String {
+    let line = |line: &str| match line.split('\t').collect::<Vec<_>>()[..] {
+        [label, ref values @ ..] if labels.contains(&label) => format!("{label}{}\n", "\t0".repeat(values.len())),
+        _ => format!("{line}\n"),
+    };
+    table.lines().map(line).collect()
+}
+
 /// Every error that an input can cause, with the input that causes it.
 fn errors() -> Vec<(&'static str, ErrorReport)> {
     let (e, m) = (electrodes(), maps());
@@ -93,6 +120,23 @@ fn errors() -> Vec<(&'static str, ErrorReport)> {
         ("electrode-off", error(Some(&moved(|k, p| if k == 7 { Vec3::new(1.0, 6.0, 43.0) } else { p })), &m, plain())),
         ("label-duplicate", error(Some(&e), &with_line(&m, 4, |line| line.replacen("AF3", "fp1", 1)), plain())),
         ("label-duplicate", error(Some(&with_line(&e, 4, |line| line.replacen("AF3", "Fp1", 1))), &m, plain())),
+        ("label-duplicate", error(None, &m.replacen("\nF7\t", "\nEEG fp 1-Ref\t", 1), plain())),
+        ("label-duplicate", error(None, &m.replacen("\nF7\t", "\nT3\t", 1), plain())),
+        (
+            "label-ambiguous",
+            error(
+                Some(&(e.replacen("\nCz\t", "\nC z\t", 1) + "C-z\t1\t2\t140\n")),
+                &m.replacen("\nCz\t", "\nEEG Cz\t", 1),
+                plain(),
+            ),
+        ),
+        ("label-bipolar", error(None, &m.replacen("\nFp1\t", "\nFp1-F7\t", 1), plain())),
+        ("label-bipolar", error(Some(&e), &m.replacen("\nFp1\t", "\nEEG Fp1 - F7\t", 1), plain())),
+        (
+            "reference-mixed",
+            error(None, &m.replacen("\nFp1\t", "\nFp1-A1\t", 1).replacen("\nFp2\t", "\nFp2-A2\t", 1), plain()),
+        ),
+        ("map-laplacian", error(Some(&e), &m, Settings { laplacian: Some(true), ..plain() })),
         ("labels-unmatched", error(Some(&e), "Q1\t3\nQ2\t4\n", plain())),
         ("labels-unmatched", error(None, "Q1\t3\nQ2\t4\n", plain())),
         ("electrodes-too-few", error(Some(&e), &first_nine, plain())),
@@ -260,7 +304,7 @@ fn every_note_is_given_when_it_applies_and_not_otherwise() {
     let codes: Vec<&str> = usual.iter().map(|(code, _)| *code).collect();
     assert_eq!(
         codes.iter().collect::<BTreeSet<_>>(),
-        ["axes-assumed", "average-referenced", "unit-recognised"].iter().collect::<BTreeSet<_>>()
+        ["axes-found", "average-referenced", "electrodes-projected", "unit-recognised"].iter().collect::<BTreeSet<_>>()
     );
     let mut met: BTreeSet<&str> = codes.into_iter().collect();
     let twelve: String = m.lines().take(13).map(|line| format!("{line}\n")).collect();
@@ -285,6 +329,38 @@ fn every_note_is_given_when_it_applies_and_not_otherwise() {
             Settings { exclude: vec!["Q".into()], ..micro.clone() },
         ),
         ("unit-relative", "info", Some(e.clone()), m.clone(), plain()),
+        ("axes-assumed", "warning", Some(numbered(&e)), numbered(&m), micro.clone()),
+        (
+            "axes-contradicted",
+            "warning",
+            Some(e.clone()),
+            m.clone(),
+            Settings { axes: Some("front-left-up".parse().unwrap()), ..micro.clone() },
+        ),
+        ("mirrored", "warning", Some(moved(|_, p| Vec3::new(-p[0], p[1], p[2]))), m.clone(), micro.clone()),
+        ("labels-renamed", "info", Some(e.clone()), m.replacen("\nFp1\t", "\nEEG Fp1-Ref\t", 1), micro.clone()),
+        ("labels-renamed", "info", Some(e.clone()), m.replacen("\nT7\t", "\nT3\t", 1), micro.clone()),
+        ("not-scalp", "info", Some(e.clone()), m.clone() + "VEOG\t1\t2\t3\t4\t5\t6\n", micro.clone()),
+        ("not-scalp", "info", Some(e.clone() + "LPA\t-70\t0\t-20\n"), m.clone(), micro.clone()),
+        ("reference-named", "info", Some(e.clone()), suffixed(&m, "-Cz"), micro.clone()),
+        ("reference-channel", "info", Some(e.clone()), zeroed(&m, &["Cz"]), micro.clone()),
+        ("channels-zero", "warning", Some(e.clone()), zeroed(&m, &["Cz", "Fz"]), micro.clone()),
+        ("positions-approximate", "info", None, m.clone() + "M1\t1\t2\t3\t4\t5\t6\n", micro.clone()),
+        (
+            "interpolated",
+            "info",
+            Some(e.clone()),
+            m.clone(),
+            Settings { interpolated: vec!["cz".into()], ..micro.clone() },
+        ),
+        ("unusual-head", "warning", Some(e.clone()), m.clone(), Settings { unusual_head: true, ..micro.clone() }),
+        (
+            "laplacian-suspected",
+            "warning",
+            Some(e.clone()),
+            with_line(&m, 1, |line| line.replacen('\t', "\tCSD ", 1)),
+            micro.clone(),
+        ),
         (
             "header-assumed",
             "info",

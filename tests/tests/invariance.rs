@@ -289,9 +289,7 @@ fn only_electrodes_with_a_value_shape_the_head() {
     let valued = sample.maps() + &format!("EOG{}\n", "\t12".repeat(sample.maps.len()));
     let report = run(&sample.table(), &valued);
     assert_eq!(report.maps, expected.maps);
-    assert!(
-        report.notes.iter().any(|note| note.code.as_str() == "values-without-position" && note.message.contains("EOG"))
-    );
+    assert!(report.notes.iter().any(|note| note.code.as_str() == "not-scalp" && note.message.contains("EOG")));
 }
 
 #[test]

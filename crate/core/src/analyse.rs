@@ -6,7 +6,7 @@ use crate::finding::{Code, Error, Finding, Place};
 use crate::fit::{BATCH, Fit, Fitter};
 use crate::forward::LeadField;
 use crate::head::{Shells, catalogued};
-use crate::map::{MapUnit, Maps, average_referenced};
+use crate::map::{MapUnit, Maps, average_referenced, hints_at_laplacian};
 use crate::math::{Vec3, mean};
 use crate::placement::{Placed, Placement, Wishes, place};
 use crate::read::{read_electrodes, read_maps};
@@ -109,12 +109,19 @@ impl Study {
 
     fn prepared(tables: Arc<Tables>, settings: Settings, before: Option<&Self>) -> Result<Self, Error> {
         settings.check(tables.maps.names.len())?;
+        if settings.laplacian == Some(true) {
+            return Err(Finding::new(Code::MapLaplacian).at(Place::input("maps")).into());
+        }
         let head = settings.head.clone().unwrap_or_default();
         let shells = head.shells.map_or_else(|| Ok(Shells::standard()), Shells::new)?;
         let wishes = Wishes {
             exclude: settings.exclude.iter().map(|label| Label::new(label)).collect(),
+            interpolated: settings.interpolated.iter().map(|label| Label::new(label)).collect(),
+            axes: settings.axes,
+            mirror: settings.mirror,
             centre_mm: head.centre_mm,
             radius_mm: head.radius_mm,
+            ..Wishes::default()
         };
         let placement = place(tables.electrodes.as_deref(), &tables.maps, &wishes)?;
         let radius = placement.sphere.sphere.radius;
@@ -151,6 +158,8 @@ impl Study {
             fit_rms_mm: fit.rms,
             fit_max_mm: fit.max,
             shells: self.shells.sized(fit.sphere.radius),
+            unusual: self.settings.unusual_head,
+            axes: self.placement.axes.axes.rows(),
         }
     }
 
@@ -375,7 +384,7 @@ impl Study {
                 x if x < -MIDLINE_MM => "left",
                 _ => "midline",
             },
-            direction: self.placement.axes.to_table(direction),
+            direction: self.placement.axes.axes.to_table(direction),
             canonical_direction: direction,
             polarity: self.settings.polarity,
             strength: moment.norm() * unit.microvolts() * activation_sd.unwrap_or(1.0),
@@ -401,6 +410,16 @@ impl Study {
             .count();
         if referenced > 0 {
             self.notes.push(Finding::new(Code::AverageReferenced).with("maps", referenced).with("count", self.count()));
+        }
+        if let Some(name) = self.tables.maps.names.iter().find(|name| hints_at_laplacian(name))
+            && self.settings.laplacian.is_none()
+        {
+            let place = Place { map: Some(name.clone()), ..Place::input("maps") };
+            self.notes.push(Finding::new(Code::LaplacianSuspected).at(place).with("map", name.as_str()));
+        }
+        if self.settings.unusual_head {
+            let given = self.settings.head.as_ref().is_some_and(|head| head.shells.is_some());
+            self.notes.push(Finding::new(Code::UnusualHead).with("shells", if given { "given" } else { "standard" }));
         }
         if self.settings.map_unit == MapUnit::Relative {
             let activations = (0..self.count()).filter(|map| self.settings.activation_sd(*map).is_some()).count();

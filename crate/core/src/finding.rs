@@ -220,6 +220,12 @@ codes! {
     NumberRange = "number-range",
     /// Error: a label that stands twice.
     LabelDuplicate = "label-duplicate",
+    /// Error: a label that stands for several electrodes.
+    LabelAmbiguous = "label-ambiguous",
+    /// Error: labels that name two sites.
+    LabelBipolar = "label-bipolar",
+    /// Error: labels that name different references.
+    ReferenceMixed = "reference-mixed",
     /// Error: no label of the maps is among the electrodes.
     LabelsUnmatched = "labels-unmatched",
     /// Error: fewer than ten electrodes with position and value.
@@ -242,6 +248,8 @@ codes! {
     MapsTooMany = "maps-too-many",
     /// Error: a map with the same value at every electrode.
     MapConstant = "map-constant",
+    /// Error: maps that are surface Laplacians.
+    MapLaplacian = "map-laplacian",
     /// Error: a map that lacks a value which other maps have.
     MapIncomplete = "map-incomplete",
     /// Error: there is no map of this number.
@@ -252,6 +260,32 @@ codes! {
     AxesAssumed = "axes-assumed",
     /// Note: parts of a file that are no tables.
     PartPassedOver = "part-passed-over",
+    /// Note: what told the axes of the table.
+    AxesFound = "axes-found",
+    /// Note: the named electrodes contradict the axes.
+    AxesContradicted = "axes-contradicted",
+    /// Note: left and right of the positions contradict the labels.
+    Mirrored = "mirrored",
+    /// Note: labels that stand for electrodes written in another way.
+    LabelsRenamed = "labels-renamed",
+    /// Note: channels and points that are not on the scalp.
+    NotScalp = "not-scalp",
+    /// Note: the reference that the labels name.
+    ReferenceNamed = "reference-named",
+    /// Note: a channel that is exactly zero in every map, the recording reference.
+    ReferenceChannel = "reference-channel",
+    /// Note: several channels that are exactly zero in every map.
+    ChannelsZero = "channels-zero",
+    /// Note: standard places that are approximate.
+    PositionsApproximate = "positions-approximate",
+    /// Note: channels whose values were interpolated.
+    Interpolated = "interpolated",
+    /// Note: how far the electrodes lie off the sphere that they are projected on.
+    ElectrodesProjected = "electrodes-projected",
+    /// Note: the standard shells do not hold for this head.
+    UnusualHead = "unusual-head",
+    /// Note: the maps may be surface Laplacians.
+    LaplacianSuspected = "laplacian-suspected",
     /// Note: a first line without a usual name was taken as names of the columns.
     HeaderAssumed = "header-assumed",
     /// Note: the length unit was recognised by the size of the head.

@@ -47,3 +47,29 @@ pub fn average_referenced(map: &[f64]) -> Vec<f64> {
     crate::math::centre(&mut map);
     map
 }
+
+/// Whether a name or a unit speaks of a surface Laplacian: a current density, or volts per area.
+pub fn hints_at_laplacian(text: &str) -> bool {
+    let text = text.to_lowercase();
+    let words = || text.split(|c: char| !c.is_alphanumeric());
+    text.contains("laplac")
+        || words().any(|word| ["csd", "scd"].contains(&word.trim_end_matches(|c: char| c.is_ascii_digit())))
+        || ["v/m²", "v/m2", "v/m^2", "v/cm²", "v/cm2", "v/cm^2", "v/mm²", "v/mm2"]
+            .iter()
+            .any(|unit| text.contains(unit))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn names_of_laplacians_are_noticed() {
+        for name in ["CSD", "csd_1", "surface Laplacian 3", "P300 [µV/m²]", "uV/cm2", "V/m^2"] {
+            assert!(hints_at_laplacian(name), "{name}");
+        }
+        for name in ["ICA1", "left tap", "map 3", "discsd", "µV", "V/m"] {
+            assert!(!hints_at_laplacian(name), "{name}");
+        }
+    }
+}

@@ -20,6 +20,11 @@ impl Axes {
         Self { rows }
     }
 
+    /// The canonical x, y and z in the frame of the table.
+    pub fn rows(&self) -> [Vec3; 3] {
+        self.rows
+    }
+
     /// A direction or a distance from the centre, in canonical axes.
     pub fn to_canonical(&self, v: Vec3) -> Vec3 {
         // Not even the sign of a zero changes where nothing is turned.

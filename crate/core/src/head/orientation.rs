@@ -61,7 +61,7 @@ impl Orientation {
         let misfit_degrees = (2.0 * libm::asin((chord.sqrt() / 2.0).min(1.0))).to_degrees();
         // Each of two directions across has half of the squared misfit; all but the share along the first axis turns.
         let error = (chord / 2.0 / (more + least.abs())).sqrt().to_degrees();
-        if pairs.len() < FEWEST || misfit_degrees > MISFIT_DEGREES || !(error <= VAGUE_DEGREES) {
+        if pairs.len() < FEWEST || misfit_degrees > MISFIT_DEGREES || error.is_nan() || error > VAGUE_DEGREES {
             return None;
         }
         let side = if exchanged { -1.0 } else { 1.0 };

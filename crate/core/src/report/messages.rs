@@ -90,10 +90,29 @@ pub fn message(finding: &Finding) -> String {
             place.and_then(|p| p.column).unwrap_or(1),
             value("found")
         ),
+        Code::LabelDuplicate if !["", &value("label")].contains(&value("other").as_str()) => format!(
+            "The labels “{}” and “{}” of the {input} (lines {} and {line}) stand for one electrode.",
+            value("other"),
+            value("label"),
+            value("first_line")
+        ),
         Code::LabelDuplicate => format!(
             "The label “{}” stands twice in the {input}: in lines {} and {line}.",
             value("label"),
             value("first_line")
+        ),
+        Code::LabelAmbiguous => format!(
+            "The label “{}” of the maps may stand for any of these electrodes: {}.",
+            value("label"),
+            value("electrodes")
+        ),
+        Code::LabelBipolar => format!(
+            "Labels that name two sites are bipolar derivations, differences of two electrodes and no map of a potential: {}.",
+            value("labels")
+        ),
+        Code::ReferenceMixed => format!(
+            "The labels name more than one reference, as in {}: values against different references are no map of one potential.",
+            value("labels")
         ),
         Code::LabelsUnmatched if value("electrodes").is_empty() => {
             format!("No label of the maps ({}) is a standard electrode name.", value("maps"))
@@ -122,6 +141,11 @@ pub fn message(finding: &Finding) -> String {
             value("label"),
             number(finding, "off_mm").map(tenths).unwrap_or_default()
         ),
+        Code::UnitsUnrecognised if finding.value("unit").is_some() => format!(
+            "Taken as {}, the positions would fit a head of radius {} mm; heads from 40 to 120 mm are computed.",
+            unit_word(&value("unit")),
+            value("radius_mm")
+        ),
         Code::UnitsUnrecognised => match finding.value("radius") {
             Some(_) => format!(
                 "The positions fit a sphere of radius {}, which is no head in metres, centimetres or millimetres; {} lies farthest from the rest.",
@@ -135,6 +159,7 @@ pub fn message(finding: &Finding) -> String {
             format!("The table holds {} maps; at most {} are read.", value("found"), value("most"))
         }
         Code::MapConstant => format!("The map “{}” has the same value at every electrode, to rounding.", value("map")),
+        Code::MapLaplacian => "The maps are surface Laplacians, said the settings; a dipole's potential cannot be fitted to them.".into(),
         Code::MapIncomplete => {
             format!("The map “{}” has no value at {}, where other maps have one.", value("map"), value("labels"))
         }
@@ -145,17 +170,63 @@ pub fn message(finding: &Finding) -> String {
             value("index")
         ),
         Code::AxesAssumed => {
-            "Axes were assumed: x to the right, y to the front, z up. Nothing in the table was used to check this."
-                .into()
+            "Axes were assumed: x to the right, y to the front, z up. Neither labels nor landmarks tell them.".into()
         }
+        Code::AxesFound => {
+            let tilt = number(finding, "tilt_degrees").filter(|tilt| *tilt >= 0.5).map(significant2);
+            let axes = match (value("axes").as_str(), &tilt) {
+                ("oblique", Some(tilt)) => format!("The head lies obliquely in its axes, turned by {tilt}° from the nearest of them, and was turned upright"),
+                ("oblique", None) => "The head lies obliquely in its axes and was turned upright".into(),
+                (name, _) => format!("Axes: {}", axes_words(name)),
+            };
+            let by = match value("by").as_str() {
+                "landmarks" => "as the points at ears and nose tell".to_owned(),
+                "labels" => format!("as these labels tell: {}", value("labels")),
+                _ => "as set".into(),
+            };
+            match (tilt, value("axes").as_str()) {
+                (Some(tilt), name) if name != "oblique" => format!("{axes}, {by}; the head is tilted by {tilt}° in them."),
+                _ => format!("{axes}, {by}."),
+            }
+        }
+        Code::AxesContradicted => format!(
+            "The labels contradict these axes: by their names the electrodes lie as if the axes were {}.",
+            axes_words(&value("axes"))
+        ),
+        Code::Mirrored => "Left and right are exchanged: by their labels the electrodes are a mirror image of a head. Either the labels or an axis of the positions is wrong; positions were kept as they are written.".into(),
+        Code::LabelsRenamed => format!("Labels of the maps read as electrodes: {}.", value("labels")),
+        Code::NotScalp => format!("Left out, because they are not on the scalp: {}.", value("labels")),
+        Code::ReferenceNamed => format!("The labels name a common reference, {}.", value("reference")),
+        Code::ReferenceChannel => format!(
+            "{} is exactly zero in every map: it was taken as the recording reference, whose 0 is a measurement, and kept.",
+            value("labels")
+        ),
+        Code::ChannelsZero => format!(
+            "Several channels are exactly zero in every map: {}. One can be the recording reference; the others hold no data and should be left out.",
+            value("labels")
+        ),
+        Code::PositionsApproximate => format!("Mastoids and ear lobes stand at approximate places: {}.", value("labels")),
+        Code::Interpolated => format!("Left out, because interpolated values are no data: {}.", value("labels")),
+        Code::ElectrodesProjected => format!(
+            "Electrodes are projected onto the sphere along its radius; they lie {} mm off it (rms), {} farthest, {} mm.",
+            number(finding, "rms_mm").map(tenths).unwrap_or_default(),
+            value("label"),
+            number(finding, "max_mm").map(tenths).unwrap_or_default()
+        ),
+        Code::UnusualHead if value("shells") == "given" => {
+            "An infant's head, or one with a defect of the skull or a craniotomy: the shells given must stand for it; concentric ones cannot show a hole.".into()
+        }
+        Code::UnusualHead => {
+            "An infant's head, or one with a defect of the skull or a craniotomy: the standard shells do not hold for it, and positions, depths and strengths may be far off. Shells for this head can be given.".into()
+        }
+        Code::LaplacianSuspected => format!(
+            "By its name the map “{}” may be a surface Laplacian (a current density), to which no potential can be fitted: please say whether it is.",
+            value("map")
+        ),
         Code::HeaderAssumed => format!("The first line of the {input} was taken as the names of its columns."),
         Code::UnitRecognised => format!(
             "Positions were taken as {}: the fitted head then has a radius of {} mm.",
-            match value("unit").as_str() {
-                "m" => "metres",
-                "cm" => "centimetres",
-                _ => "millimetres",
-            },
+            unit_word(&value("unit")),
             number(finding, "radius_mm").map(tenths).unwrap_or_default()
         ),
         Code::UnitSphereScaled => {
@@ -192,9 +263,9 @@ pub fn message(finding: &Finding) -> String {
         Code::Excluded => format!("Left out by hand: {}.", value("labels")),
         Code::ExcludeUnmatched => format!("To be left out, but not in the tables: {}.", value("labels")),
         Code::SphereDeviation => format!(
-            "The electrode {} lies {} mm off the fitted sphere; check its position.",
-            value("label"),
-            value("max_mm")
+            "Far off the fitted sphere, up to {} mm: {}. Check these positions; points that are not on the scalp should be left out.",
+            value("max_mm"),
+            value("labels")
         ),
         Code::SeriesOnly => "These shells are computed by the plain series, which is exact but slower.".into(),
     }
@@ -233,6 +304,12 @@ pub fn hint(code: Code) -> &'static str {
         }
         Code::NumberRange => "Correct the field, or scale the whole table.",
         Code::LabelDuplicate => "Rename or remove one of the two lines.",
+        Code::LabelAmbiguous => "Write the label as one of these electrodes is written, or rename the others.",
+        Code::LabelBipolar => {
+            "Give the values of single electrodes against one reference, or leave these channels out."
+        }
+        Code::ReferenceMixed => "Refer all channels to one reference, before any decomposition.",
+        Code::MapLaplacian => "Give the potentials that they were computed from.",
         Code::LabelsUnmatched => {
             "Use the same labels in both tables (upper and lower case do not matter), or standard 10-10 names without a table of electrodes."
         }
@@ -260,7 +337,19 @@ pub fn hint(code: Code) -> &'static str {
 
 /// Whether a note is a warning.
 pub fn is_warning(code: Code) -> bool {
-    matches!(code, Code::FewElectrodes | Code::ValuesWithoutPosition | Code::ExcludeUnmatched | Code::SphereDeviation)
+    matches!(
+        code,
+        Code::AxesAssumed
+            | Code::AxesContradicted
+            | Code::Mirrored
+            | Code::ChannelsZero
+            | Code::UnusualHead
+            | Code::LaplacianSuspected
+            | Code::FewElectrodes
+            | Code::ValuesWithoutPosition
+            | Code::ExcludeUnmatched
+            | Code::SphereDeviation
+    )
 }
 
 fn number(finding: &Finding, name: &str) -> Option<f64> {
@@ -268,6 +357,32 @@ fn number(finding: &Finding, name: &str) -> Option<f64> {
         Some(Value::Number(number)) => Some(*number),
         _ => None,
     }
+}
+
+fn significant2(value: f64) -> String {
+    significant(value, 2)
+}
+
+fn unit_word(symbol: &str) -> &'static str {
+    match symbol {
+        "m" => "metres",
+        "cm" => "centimetres",
+        _ => "millimetres",
+    }
+}
+
+/// Axes in words: `right-front-up` is x to the right, y to the front, z up.
+pub(super) fn axes_words(name: &str) -> String {
+    let way = |word: &str| match word {
+        "right" => "to the right",
+        "left" => "to the left",
+        "front" => "to the front",
+        "back" => "to the back",
+        "up" => "up",
+        _ => "down",
+    };
+    let words = ["x", "y", "z"].iter().zip(name.split('-')).map(|(axis, word)| format!("{axis} {}", way(word)));
+    words.collect::<Vec<_>>().join(", ")
 }
 
 fn input_name(place: Option<&Place>) -> &'static str {

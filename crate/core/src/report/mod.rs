@@ -80,6 +80,10 @@ pub struct HeadReport {
     pub fit_max_mm: f64,
     /// Shells, innermost first.
     pub shells: Vec<Shell>,
+    /// Whether it is said to be a head for which the standard shells do not hold.
+    pub unusual: bool,
+    /// The canonical x, y and z as unit vectors in the frame of the electrode table.
+    pub axes: [Vec3; 3],
 }
 
 /// An electrode.
@@ -149,7 +153,7 @@ impl FittedMap {
 pub struct EquivalentDipole {
     /// Position in the frame of the electrode table.
     pub position_mm: Vec3,
-    /// Position with x right, y front, z up and the origin at the sphere's centre.
+    /// Position with x right, y front, z up and the origin at the sphere's centre; turned from the table's axes.
     pub canonical_mm: Vec3,
     /// Standard site radially above, where one is within 20°; absent within 5 mm of the centre.
     pub nearest_site: Option<&'static str>,

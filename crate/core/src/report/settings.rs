@@ -1,5 +1,5 @@
 use crate::finding::{Code, Error, Finding, Place};
-use crate::head::ShellSpec;
+use crate::head::{AxesName, ShellSpec};
 use crate::map::MapUnit;
 use crate::math::Vec3;
 use serde::{Deserialize, Serialize};
@@ -12,6 +12,16 @@ pub struct Settings {
     pub head: Option<HeadSettings>,
     /// Labels of electrodes to leave out.
     pub exclude: Vec<String>,
+    /// Labels of electrodes whose values were interpolated: they are no data, and left out.
+    pub interpolated: Vec<String>,
+    /// Directions of x, y and z of the electrode table, as in `front-left-up`.
+    pub axes: Option<AxesName>,
+    /// Whether left and right of the electrode table are to be exchanged; `None` is undecided.
+    pub mirror: Option<bool>,
+    /// An infant's head, or one with a defect of the skull or a craniotomy: the standard shells do not hold.
+    pub unusual_head: bool,
+    /// Whether the maps are surface Laplacians; `None` is undecided.
+    pub laplacian: Option<bool>,
     /// Unit of the maps.
     pub map_unit: MapUnit,
     /// Maps, counted from 0, whose sign is turned.

@@ -127,7 +127,7 @@ impl Sheet {
         let used: Vec<&Site> = sites.iter().filter(|site| site.used).collect();
         let dipole = &map.dipole;
         Self {
-            sentence: sentence(map),
+            sentence: sentence(map, head),
             rows: rows(map, head, used.len(), sites.len()),
             head: head_sheet(head),
             electrodes: electrodes(map, sites),
@@ -170,7 +170,7 @@ fn electrodes(map: &FittedMap, sites: &[Site]) -> Vec<SheetElectrode> {
     sites.iter().map(electrode).collect()
 }
 
-fn sentence(map: &FittedMap) -> String {
+fn sentence(map: &FittedMap, head: &HeadReport) -> String {
     let dipole = &map.dipole;
     let shares = format!(
         "One equivalent dipole reproduces {} % of this map (residual variance {} %, {} degrees of freedom) in a spherical model.",
@@ -196,7 +196,8 @@ fn sentence(map: &FittedMap) -> String {
         }
         Stopped::IterationLimit => " The search ended before it reached a minimum: do not rely on this position.",
     };
-    format!("{shares} {place}{reservation} {CAUTION}")
+    let unusual = if head.unusual { " The shells of the model may not hold for this head." } else { "" };
+    format!("{shares} {place}{reservation}{unusual} {CAUTION}")
 }
 
 /// Stands beside every share.

@@ -1,11 +1,18 @@
 //! Electrodes and map labels to positions on the head; says what it assumed and what did not match.
 
-use crate::electrode::{Electrode, Label, standard_position};
-use crate::finding::{Code, Error, Finding, Place};
-use crate::head::{Axes, HEAD_RADII_MM, LengthUnit, STANDARD_RADIUS_MM, Sphere, SphereFit, spread};
+mod frame;
+mod labels;
+
+pub use frame::{AxesFound, Evidence};
+pub use labels::LabelsFound;
+
+use crate::electrode::{Electrode, Label, Landmark, Reading};
+use crate::finding::{Choice, Code, Error, Finding, Place};
+use crate::head::{AxesName, HEAD_RADII_MM, LengthUnit, STANDARD_RADIUS_MM, Sphere, SphereFit, spread};
 use crate::map::Maps;
 use crate::math::Vec3;
-use std::collections::{HashMap, HashSet};
+use frame::{Frame, find_axes, recognise_unit};
+use labels::{Matched, approximate, match_labels};
 
 /// Fewest electrodes that a dipole is fitted to: seven parameters of reference, position and moment, and three more.
 pub const FEWEST_ELECTRODES: usize = 10;
@@ -19,11 +26,14 @@ const COINCIDENT_MM: f64 = 0.1;
 /// Farthest that a centre may be from the origin of the electrode table.
 const MOST_OFFSET_MM: f64 = 1000.0;
 
-/// A deviation from the sphere, in radii, that is refused.
-const FAR: f64 = 0.6;
+/// A deviation from the sphere, in radii, that is refused: 40 mm on the standard head.
+const FAR: f64 = 0.45;
 
 /// A deviation from the sphere that brings a warning; measured heads reach 14 to 21 mm.
 const LARGE_DEVIATION_MM: f64 = 25.0;
+
+/// A deviation from the sphere that is not worth a word.
+const SMALL_DEVIATION_MM: f64 = 0.1;
 
 /// Electrodes on the head.
 #[derive(Clone, Debug)]
@@ -33,9 +43,13 @@ pub struct Placement {
     /// The scalp, in millimetres, with the deviations of the electrodes from it.
     pub sphere: SphereFit,
     /// The way from the frame of the table to canonical axes.
-    pub axes: Axes,
+    pub axes: AxesFound,
     /// Whether positions were measured, so that the sphere was fitted to them unless wished for otherwise.
     pub measured: bool,
+    /// What became of the labels.
+    pub labels: LabelsFound,
+    /// What was inferred and can be chosen otherwise.
+    pub choices: Vec<Choice>,
     /// What was assumed and what did not match.
     pub notes: Vec<Finding>,
 }
@@ -51,6 +65,8 @@ pub struct Placed {
     pub row: usize,
     /// Whether the fits use it; false when left out by hand.
     pub used: bool,
+    /// What it may be called, the labels of both tables first.
+    keys: Vec<String>,
 }
 
 /// What the user wants otherwise than the electrodes tell.
@@ -58,6 +74,20 @@ pub struct Placed {
 pub struct Wishes {
     /// Labels to leave out.
     pub exclude: Vec<Label>,
+    /// Labels whose values were interpolated: left out too.
+    pub interpolated: Vec<Label>,
+    /// Channels that a file declares not to measure the scalp.
+    pub other_channels: Vec<Label>,
+    /// Channels that a file declares to measure the scalp, whatever their names.
+    pub scalp: Vec<Label>,
+    /// Axes of the electrode table.
+    pub axes: Option<AxesName>,
+    /// Whether left and right are to be exchanged.
+    pub mirror: Option<bool>,
+    /// Points of the head in the frame and unit of the electrode table.
+    pub landmarks: Vec<(Landmark, Vec3)>,
+    /// Unit of the electrode table.
+    pub unit: Option<LengthUnit>,
     /// Centre of the head in the frame of the electrode table.
     pub centre_mm: Option<Vec3>,
     /// Scalp radius.
@@ -74,17 +104,17 @@ impl Placement {
     /// its radius.
     pub fn directions(&self) -> Vec<Vec3> {
         let directions = directions(&self.electrodes, self.sphere.sphere.centre);
-        directions.into_iter().map(|direction| self.axes.to_canonical(direction)).collect()
+        directions.into_iter().map(|direction| self.axes.axes.to_canonical(direction)).collect()
     }
 
     /// A position of the table's frame in canonical axes, from the centre of the sphere.
     pub fn canonical(&self, position_mm: Vec3) -> Vec3 {
-        self.axes.to_canonical(position_mm - self.sphere.sphere.centre)
+        self.axes.axes.to_canonical(position_mm - self.sphere.sphere.centre)
     }
 
     /// A canonical position in the frame of the table.
     pub fn table(&self, canonical_mm: Vec3) -> Vec3 {
-        self.sphere.sphere.centre + self.axes.to_table(canonical_mm)
+        self.sphere.sphere.centre + self.axes.axes.to_table(canonical_mm)
     }
 }
 
@@ -92,25 +122,28 @@ fn directions(electrodes: &[Placed], centre: Vec3) -> Vec<Vec3> {
     electrodes.iter().filter(|e| e.used).filter_map(|e| (e.position_mm - centre).unit()).collect()
 }
 
-/// Matches labels without regard to case, recognises the unit of length by the size of the head, and fits the sphere to
-/// all electrodes that have a position and a value, whether left out or not. Without a table, or with labels alone, the
-/// electrodes stand at their standard positions on a sphere of [`STANDARD_RADIUS_MM`], or of the radius wished for.
+/// Brings labels together, recognises the unit of length by the size of the head, fits the sphere to all electrodes that
+/// have a position and a value, whether left out or not, and finds how the head lies in its table. Without a table, or with
+/// labels alone, the electrodes stand at their standard positions on a sphere of [`STANDARD_RADIUS_MM`], or of the radius
+/// wished for.
 ///
 /// # Errors
-/// `labels-unmatched`, `electrodes-too-few`, `electrodes-coincident`, `electrodes-collinear`, `electrodes-coplanar`,
-/// `units-unrecognised`, `electrode-off`, `head-invalid`.
+/// `label-duplicate`, `label-ambiguous`, `label-bipolar`, `reference-mixed`, `labels-unmatched`, `electrodes-too-few`,
+/// `electrodes-coincident`, `electrodes-collinear`, `electrodes-coplanar`, `units-unrecognised`, `electrode-off`,
+/// `head-invalid`.
 pub fn place(table: Option<&[Electrode]>, maps: &Maps, wishes: &Wishes) -> Result<Placement, Error> {
-    let mut notes = Vec::new();
     let measured = table.filter(|electrodes| electrodes.iter().any(|e| e.position.is_some()));
-    let mut electrodes = match_labels(table, measured.is_some(), maps, &mut notes)?;
+    let Matched { mut electrodes, found: mut labels } = match_labels(table, measured.is_some(), maps, wishes)?;
+    let mut notes = labels.notes();
     refuse_few(electrodes.len())?;
     let points: Vec<Vec3> = electrodes.iter().map(|e| e.position_mm).collect();
     refuse_flat(&points)?;
+    let mut choices = Vec::new();
     let frame = match measured {
-        Some(_) => recognise_unit(&electrodes, &mut notes)?,
+        Some(_) => recognise_unit(&electrodes, wishes, &mut choices, &mut notes)?,
         None => Frame::Directions(Code::StandardPositions),
     };
-    let measured = matches!(frame, Frame::Positions { .. });
+    let is_measured = matches!(frame, Frame::Positions { .. });
     let sphere = match frame {
         Frame::Positions { millimetres, sphere } => {
             electrodes.iter_mut().for_each(|e| e.position_mm = e.position_mm * millimetres);
@@ -123,8 +156,12 @@ pub fn place(table: Option<&[Electrode]>, maps: &Maps, wishes: &Wishes) -> Resul
             sphere
         }
     };
+    let axes = match measured {
+        Some(table) => find_axes(table, &frame, sphere, wishes, &mut choices, &mut notes),
+        None => AxesFound::standard(),
+    };
     let sphere = sphere.deviations(&electrodes.iter().map(|e| e.position_mm).collect::<Vec<_>>());
-    leave_out(&mut electrodes, &wishes.exclude, &mut notes);
+    leave_out(&mut electrodes, wishes, &mut labels, &mut notes);
     refuse_coincident(&electrodes)?;
     refuse_far(&electrodes, sphere.sphere, wishes)?;
 
@@ -135,74 +172,50 @@ pub fn place(table: Option<&[Electrode]>, maps: &Maps, wishes: &Wishes) -> Resul
     if used < FEW_ELECTRODES {
         notes.push(Finding::new(Code::FewElectrodes).with("electrodes", used).with("degrees_of_freedom", used - 7));
     }
-    notes.push(Finding::new(Code::AxesAssumed));
-    if let Some((worst, off)) = most_off(&electrodes, sphere.sphere).filter(|(_, off)| *off > LARGE_DEVIATION_MM) {
-        notes.push(
-            Finding::new(Code::SphereDeviation)
-                .at(Place { label: Some(worst.label.to_string()), ..Place::input("electrodes") })
-                .with("max_mm", off)
-                .with("label", worst.label.as_str()),
-        );
+    let near = approximate(&electrodes);
+    if measured.is_none() && !near.is_empty() {
+        notes.push(Finding::new(Code::PositionsApproximate).at(Place::input("maps")).with("labels", near));
     }
-    Ok(Placement { electrodes, sphere, axes: Axes::CANONICAL, measured, notes })
+    note_deviations(&electrodes, &sphere, &mut notes);
+    note_zeros(&electrodes, maps, &mut notes);
+    Ok(Placement { electrodes, sphere, axes, measured: is_measured, labels, choices, notes })
 }
 
-/// Electrodes with position and value, positions still in the unit of the table.
-fn match_labels(
-    table: Option<&[Electrode]>,
-    measured: bool,
-    maps: &Maps,
-    notes: &mut Vec<Finding>,
-) -> Result<Vec<Placed>, Error> {
-    let known: Option<HashMap<String, &Electrode>> =
-        table.map(|electrodes| electrodes.iter().map(|e| (e.label.key(), e)).collect());
-    let mut placed = Vec::new();
-    let mut unplaced = Vec::new();
-    let mut without_value: Vec<String> = Vec::new();
-    for (row, label) in maps.labels.iter().enumerate() {
-        if maps.values.row(row).iter().all(|value| value.is_nan()) {
-            if table.is_none() {
-                without_value.push(label.to_string());
-            }
-            continue;
-        }
-        let electrode = match &known {
-            Some(known) => known.get(&label.key()).copied().map(|e| (e.label.clone(), e.position)),
-            None => Some((label.clone(), None)),
-        };
-        let found = electrode.and_then(|(label, position)| {
-            let position = if measured { position } else { standard_position(&label) };
-            position.map(|position_mm| Placed { label, position_mm, row, used: true })
-        });
-        match found {
-            Some(electrode) => placed.push(electrode),
-            None => unplaced.push(label.to_string()),
-        }
-    }
-    if maps.values.iter().all(|value| value.is_nan()) {
-        return Err(Finding::new(Code::MapsNone).at(Place::input("maps")).into());
-    }
-    if placed.is_empty() {
-        let some = |labels: Vec<String>| labels.into_iter().take(5).collect::<Vec<_>>();
-        let electrodes = table.map(|t| t.iter().map(|e| e.label.to_string()).collect()).unwrap_or_default();
-        return Err(Finding::new(Code::LabelsUnmatched)
-            .at(Place::input("maps"))
-            .with("maps", some(maps.labels.iter().map(Label::to_string).collect()))
-            .with("electrodes", some(electrodes))
-            .into());
-    }
-    if !unplaced.is_empty() {
-        notes.push(Finding::new(Code::ValuesWithoutPosition).at(Place::input("maps")).with("labels", unplaced));
-    }
-    let valued: HashSet<String> = placed.iter().map(|e| e.label.key()).collect();
-    let unvalued = |e: &&Electrode| (e.position.is_some() || !measured) && !valued.contains(&e.label.key());
-    without_value.extend(table.unwrap_or_default().iter().filter(unvalued).map(|e| e.label.to_string()));
-    if !without_value.is_empty() {
+/// How far the electrodes lie off the sphere that they are projected on.
+fn note_deviations(electrodes: &[Placed], sphere: &SphereFit, notes: &mut Vec<Finding>) {
+    let Some((worst, off)) = most_off(electrodes, sphere.sphere) else { return };
+    let place = || Place { label: Some(worst.label.to_string()), ..Place::input("electrodes") };
+    if off > SMALL_DEVIATION_MM {
         notes.push(
-            Finding::new(Code::PositionsWithoutValue).at(Place::input("electrodes")).with("labels", without_value),
+            Finding::new(Code::ElectrodesProjected)
+                .at(place())
+                .with("max_mm", off)
+                .with("label", worst.label.as_str())
+                .with("rms_mm", sphere.rms),
         );
     }
-    Ok(placed)
+    if off > LARGE_DEVIATION_MM {
+        let far = electrodes.iter().filter(|e| e.used && deviation(e, sphere.sphere) > LARGE_DEVIATION_MM);
+        let labels: Vec<String> = far.map(|e| e.label.to_string()).collect();
+        notes.push(Finding::new(Code::SphereDeviation).at(place()).with("max_mm", off).with("labels", labels));
+    }
+}
+
+/// Says which channels are exactly zero in every map while others are not: one is the recording reference, whose value of 0
+/// is a measurement like any other.
+fn note_zeros(electrodes: &[Placed], maps: &Maps, notes: &mut Vec<Finding>) {
+    let zero = |e: &&Placed| maps.values.row(e.row).iter().all(|&value| value == 0.0);
+    let labels: Vec<String> = electrodes.iter().filter(|e| e.used).filter(zero).map(|e| e.label.to_string()).collect();
+    let used = electrodes.iter().filter(|e| e.used).count();
+    let code = match labels.len() {
+        0 => return,
+        // A table of zeros is said to be one.
+        count if count == used => return,
+        1 => Code::ReferenceChannel,
+        _ => Code::ChannelsZero,
+    };
+    let place = Place { label: labels.first().cloned(), ..Place::input("maps") };
+    notes.push(Finding::new(code).at(place).with("labels", labels));
 }
 
 fn refuse_few(found: usize) -> Result<(), Error> {
@@ -231,41 +244,6 @@ fn refuse_flat(points: &[Vec3]) -> Result<(), Error> {
         return Ok(());
     };
     Err(Finding::new(code).at(Place::input("electrodes")).into())
-}
-
-/// What the numbers of a table are.
-enum Frame {
-    /// Positions in a unit of so many millimetres, and the fitted sphere in millimetres.
-    Positions { millimetres: f64, sphere: Sphere },
-    /// Directions from the centre, and the note that says so.
-    Directions(Code),
-}
-
-fn recognise_unit(electrodes: &[Placed], notes: &mut Vec<Finding>) -> Result<Frame, Error> {
-    let points: Vec<Vec3> = electrodes.iter().map(|e| e.position_mm).collect();
-    let unrecognised = |radius: Option<f64>| {
-        let label = farthest(electrodes);
-        let place = Place { label: Some(label.clone()), ..Place::input("electrodes") };
-        let finding = Finding::new(Code::UnitsUnrecognised).at(place).with("label", label);
-        Error::from(match radius {
-            Some(radius) => finding.with("radius", radius),
-            None => finding,
-        })
-    };
-    let sphere = Sphere::fit(&points).ok_or_else(|| unrecognised(None))?.sphere;
-    if sphere.is_unit() {
-        return Ok(Frame::Directions(Code::UnitSphereScaled));
-    }
-    let unit = LengthUnit::of_head(sphere.radius).ok_or_else(|| unrecognised(Some(sphere.radius)))?;
-    let millimetres = unit.millimetres();
-    let sphere = Sphere { centre: sphere.centre * millimetres, radius: sphere.radius * millimetres };
-    notes.push(
-        Finding::new(Code::UnitRecognised)
-            .at(Place::input("electrodes"))
-            .with("unit", unit.symbol())
-            .with("radius_mm", sphere.radius),
-    );
-    Ok(Frame::Positions { millimetres, sphere })
 }
 
 /// The electrode whose distance from the median position differs most from the median distance.
@@ -311,8 +289,13 @@ fn wished(fitted: Sphere, wishes: &Wishes) -> Result<Sphere, Error> {
 
 /// The used electrode farthest off a sphere, and how far.
 fn most_off(electrodes: &[Placed], sphere: Sphere) -> Option<(&Placed, f64)> {
-    let off = |e: &Placed| ((e.position_mm - sphere.centre).norm() - sphere.radius).abs();
-    electrodes.iter().filter(|e| e.used).map(|e| (e, off(e))).max_by(|a, b| a.1.total_cmp(&b.1))
+    let used = electrodes.iter().filter(|e| e.used);
+    used.map(|e| (e, deviation(e, sphere))).max_by(|a, b| a.1.total_cmp(&b.1))
+}
+
+/// How far an electrode lies off a sphere.
+fn deviation(electrode: &Placed, sphere: Sphere) -> f64 {
+    ((electrode.position_mm - sphere.centre).norm() - sphere.radius).abs()
 }
 
 /// No electrode may be so far off the sphere that its direction from the centre means nothing.
@@ -331,16 +314,31 @@ fn refuse_far(electrodes: &[Placed], sphere: Sphere, wishes: &Wishes) -> Result<
         .into())
 }
 
-fn leave_out(electrodes: &mut [Placed], exclude: &[Label], notes: &mut Vec<Finding>) {
-    let excluded: HashSet<String> = exclude.iter().map(Label::key).collect();
-    let known: HashSet<String> = electrodes.iter().map(|e| e.label.key()).collect();
-    electrodes.iter_mut().for_each(|e| e.used = !excluded.contains(&e.label.key()));
-    let labels = |found: bool| -> Vec<String> {
-        exclude.iter().filter(|label| known.contains(&label.key()) == found).map(Label::to_string).collect()
-    };
-    for (code, labels) in [(Code::Excluded, labels(true)), (Code::ExcludeUnmatched, labels(false))] {
-        if !labels.is_empty() {
-            notes.push(Finding::new(code).with("labels", labels));
+/// Leaves out what is named by a label of either table as written, else by what is in it.
+fn leave_out(electrodes: &mut [Placed], wishes: &Wishes, found: &mut LabelsFound, notes: &mut Vec<Finding>) {
+    let mut unmatched: Vec<String> = Vec::new();
+    for (code, labels) in [(Code::Excluded, &wishes.exclude), (Code::Interpolated, &wishes.interpolated)] {
+        let mut named: Vec<String> = Vec::new();
+        for label in labels {
+            let exactly = |e: &&mut Placed| e.keys.iter().take(2).any(|key| *key == label.key());
+            let loose = labels::loose_keys(&Reading::of(label));
+            let loosely = |e: &&mut Placed| loose.iter().any(|key| e.keys.contains(key));
+            let exact = electrodes.iter_mut().any(|e| exactly(&e));
+            let mut any = false;
+            for electrode in electrodes.iter_mut().filter(|e| if exact { exactly(e) } else { loosely(e) }) {
+                electrode.used = false;
+                any = true;
+            }
+            if any { &mut named } else { &mut unmatched }.push(label.to_string());
         }
+        if !named.is_empty() {
+            notes.push(Finding::new(code).with("labels", named.clone()));
+        }
+        if code == Code::Interpolated {
+            found.interpolated = named;
+        }
+    }
+    if !unmatched.is_empty() {
+        notes.push(Finding::new(Code::ExcludeUnmatched).with("labels", unmatched));
     }
 }
