@@ -334,7 +334,8 @@ type InputKind = "electrodes" | "maps";
 
 type Phase = "loading" | "ready" | "busy" | "answered" | "failed";
 
-type ExampleTitle = { name: string; title: string };
+/** `edited`: it was typed on since. */
+type ExampleTitle = { name: string; title: string; edited: boolean };
 
 interface Answer {
   key: number;

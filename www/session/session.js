@@ -6,7 +6,8 @@
 import { makeStore } from "./store.js";
 import { faultOf } from "../engine/fault.js";
 import { pageFault } from "../text/faults.js";
-import { FIRST_SETTINGS, sentSettings, settingsForOther, withTurned, withValueAt } from "./settings.js";
+import { firstLine, FIRST_SETTINGS, isOtherTable, sentSettings, settingsForOther } from "./settings.js";
+import { withTurned, withValueAt } from "./settings.js";
 
 /** @import { EngineClient } from "../engine/pool/client.js" */
 
@@ -186,20 +187,38 @@ export function makeSession() {
     },
 
     /**
-     * One or both inputs at once; null takes an input away.
+     * One or both inputs at once; null takes an input away. An invented map gives way as a whole.
      * @param {Partial<Record<InputKind, Input | null>>} inputs
      */
     put(inputs) {
-      const { inputs: before, settings, example } = store.read();
-      // Typing goes on with the same table; only another name makes it another one.
-      const other = KINDS.filter((kind) => kind in inputs && inputs[kind]?.name !== before[kind]?.name);
-      const kept = settingsForOther(settings, other);
+      const { inputs: held, settings, example } = store.read();
+      const before = example === null ? held : { electrodes: null, maps: null };
+      const other = KINDS.filter((kind) => kind in inputs && isOtherTable(held[kind], inputs[kind] ?? null));
+      const kept = settingsForOther(settings, example === null ? other : KINDS);
       store.write({
         inputs: { ...before, ...inputs },
         settings: example === null ? kept : { ...kept, mapUnit: FIRST_SETTINGS.mapUnit },
         changed: [],
         example: null,
         setAside: null,
+      });
+      ask();
+    },
+
+    /**
+     * A table as it is typed on; of an invented map too, which then is no longer the one that was planted.
+     * @param {InputKind} kind
+     * @param {Input | null} input
+     */
+    edit(kind, input) {
+      const { inputs, settings, example } = store.read();
+      if (example === null || input === null) return this.put({ [kind]: input });
+      const same = inputs[kind] !== null && firstLine(inputs[kind]) === firstLine(input);
+      store.write({
+        inputs: { ...inputs, [kind]: input },
+        settings: same ? settings : settingsForOther(settings, [kind]),
+        changed: [],
+        example: { ...example, edited: true },
       });
       ask();
     },
@@ -212,7 +231,7 @@ export function makeSession() {
         inputs: { electrodes: example.electrodes, maps: example.maps },
         settings: { ...settingsForOther(settings, KINDS), mapUnit: example.unit ?? FIRST_SETTINGS.mapUnit },
         changed: [],
-        example: { name: example.name, title: example.title },
+        example: { name: example.name, title: example.title, edited: false },
         setAside: own ? { inputs, settings } : setAside,
       });
       ask();
@@ -250,11 +269,12 @@ export function makeSession() {
       this.set({ exclude: used ? others : [...others, label] });
     },
 
-    /** Back to the settings of the answer that is shown. */
+    /** Back to the tables and settings of the answer that is shown. */
     restore() {
       const { answer } = store.read();
       if (answer === null) return;
-      store.write({ settings: answer.settings, changed: [] });
+      const { inputs, settings, example } = answer;
+      store.write({ inputs, settings, example, changed: [] });
       ask();
     },
 

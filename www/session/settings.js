@@ -21,6 +21,22 @@ export function sentSettings(settings) {
   return request;
 }
 
+/** Of a text; null of bytes. @param {Input} input */
+export function firstLine({ content }) {
+  return typeof content === "string" ? content.trimStart().split("\n", 1)[0] : null;
+}
+
+/**
+ * Whether a table takes the place of another one, rather than being the same one typed on: under another name, or
+ * with another first line, which tells how many columns there are.
+ * @param {Input | null} before
+ * @param {Input | null} now
+ */
+export function isOtherTable(before, now) {
+  if (before === null || now === null) return before !== now;
+  return before.name !== now.name || firstLine(before) !== firstLine(now);
+}
+
 /**
  * What of the settings outlives another table. Electrodes were left out of the former one; signs and activations
  * belong to its maps, a centre and a radius to its electrodes.

@@ -135,6 +135,7 @@ const WORDS = {
   "failure.details": "Details to copy",
   "failure.copy": "Copy details",
   "failure.restore": "Back to the settings of the answer",
+  "failure.restore-input": "Back to the input of the answer",
   "failure.dismiss": "Close",
 
   notices: "Licences of what is built in",
@@ -159,7 +160,7 @@ export function furtherText(count, later) {
 
 /** @param {string} subject what the answer is for */
 export function keptText(subject) {
-  return `The previous answer (${subject}) is still shown below.`;
+  return `The previous answer (${subject}) is still shown.`;
 }
 
 /** Which map of which inputs. @param {Answer} answer */
@@ -167,7 +168,7 @@ export function subjectText({ names, maps, chosen, example }) {
   const map = names.maps || word("slot.pasted");
   const electrodes =
     names.electrodes === null ? word("slot.standard") : names.electrodes || word("slot.pasted-electrodes");
-  const invented = example === null ? "" : `invented example “${example.title}”`;
+  const invented = example === null ? "" : `invented example “${example.title}”${example.edited ? ", edited" : ""}`;
   return [maps[chosen]?.name, map, electrodes, invented].filter((part) => part).join(" · ");
 }
 

@@ -44,6 +44,7 @@ export function showAnswer(session) {
         }),
       );
       dropOrphanedNote();
+      need("spoken", HTMLElement).textContent = splitSentence(text)[0];
       hint.textContent = !sheet && map !== undefined && "error" in map ? map.error.hint : "";
       hint.hidden = hint.textContent === "";
     },

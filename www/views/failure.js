@@ -2,7 +2,7 @@
 
 import { copyText } from "../export/out.js";
 import { detailsText } from "../text/faults.js";
-import { keptText, subjectText } from "../text/words.js";
+import { keptText, subjectText, word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { need } from "./element.js";
 
@@ -41,7 +41,10 @@ export function showFailure(session) {
       // What comes from the head is said beside the head.
       const place = need(failure !== null && comesFromHead(state) ? "head-failure" : "failure-place", HTMLElement);
       if (panel.parentElement !== place) place.append(panel);
-      restore.hidden = state.answer === null || state.settings === state.answer.settings;
+      const { answer } = state;
+      const others = answer !== null && state.inputs !== answer.inputs;
+      restore.hidden = answer === null || (!others && state.settings === answer.settings);
+      restore.textContent = word(others ? "failure.restore-input" : "failure.restore");
       need("failure-message", HTMLElement).textContent = failure?.message ?? "";
       need("failure-hint", HTMLElement).textContent = failure?.hint ?? "";
       const kept = need("failure-kept", HTMLElement);

@@ -28,16 +28,20 @@ function showSlot(session, kind) {
   let own = null;
   let timer = 0;
 
-  /** Takes what was put here by hand, and says so if it reads like the other kind. @param {Input | null} input */
-  const take = async (input) => {
-    session.put({ [kind]: input });
+  /**
+   * Takes what was put here by hand, and says so if it reads like the other kind.
+   * @param {Input | null} input
+   * @param {() => void} put
+   */
+  const take = async (input, put) => {
+    put();
     const read = input === null ? kind : await session.kindOf(input.content);
     if (session.read().inputs[kind] === input) misplaced.hidden = read === kind;
   };
   const takeField = () => {
     clearTimeout(timer);
     own = field.value.trim() === "" ? null : { name: "", content: field.value };
-    take(own).catch(session.fail);
+    take(own, () => session.edit(kind, own)).catch(session.fail);
   };
   field.addEventListener("input", () => {
     clearTimeout(timer);
@@ -53,7 +57,8 @@ function showSlot(session, kind) {
     // The same file can be picked again after it has changed.
     file.value = "";
     try {
-      await take(await inputOfFile(picked));
+      const input = await inputOfFile(picked);
+      await take(input, () => session.put({ [kind]: input }));
     } catch (error) {
       session.fail(error);
     }
@@ -138,8 +143,9 @@ function showFolding(session) {
   );
   session.watch(
     (state) => state.failure,
-    (failure) => {
-      if (failure !== null) setFolded(false);
+    (failure, { changed }) => {
+      // What comes from a setting is mended where the setting is.
+      if (failure !== null && changed.length === 0) setFolded(false);
     },
   );
 }
