@@ -303,7 +303,14 @@ type WorkerReply =
   { id: number; value: unknown } | { id: number; progress: FitProgress } | { id: number; fault: Fault };
 
 /** Settings as the session holds them. */
-type PageSettings = Required<Omit<EngineSettings, "head" | "assess">> & { head?: PageHead };
+interface PageSettings extends EngineSettings {
+  mapUnit: MapUnit;
+  exclude: string[];
+  flip: number[];
+  polarity: Polarity;
+  activationSd: (number | null)[];
+  head?: PageHead;
+}
 
 /** What is left out is standard, or fitted to the electrodes. */
 interface PageHead {

@@ -37,22 +37,26 @@ export function isOtherTable(before, now) {
   return before.name !== now.name || firstLine(before) !== firstLine(now);
 }
 
+/** Settings that belong to one table and say nothing about another. @type {Record<InputKind, (keyof PageSettings)[]>} */
+const BOUND = {
+  maps: ["exclude", "interpolated", "flip", "activationSd", "laplacian"],
+  electrodes: ["exclude", "interpolated", "axes", "mirror", "unusualHead", "head"],
+};
+
 /**
- * What of the settings outlives another table. Electrodes were left out of the former one; signs and activations
- * belong to its maps, a centre and a radius to its electrodes.
+ * What of the settings outlives another table: of the head its shells, and what belongs to no table.
  * @param {PageSettings} settings
  * @param {InputKind[]} kinds of the tables that are others now
  * @returns {PageSettings}
  */
 export function settingsForOther(settings, kinds) {
-  if (kinds.length === 0) return settings;
-  const kept = { ...settings, exclude: FIRST_SETTINGS.exclude };
-  if (kinds.includes("maps")) Object.assign(kept, { flip: [], activationSd: [] });
-  if (kinds.includes("electrodes")) {
-    delete kept.head;
-    if (settings.head?.shells !== undefined) kept.head = { shells: settings.head.shells };
-  }
-  return kept;
+  const bound = kinds.flatMap((kind) => BOUND[kind]);
+  const kept = Object.fromEntries(
+    Object.entries(settings).filter(([key]) => !bound.includes(/** @type {keyof PageSettings} */ (key))),
+  );
+  const shells = settings.head?.shells;
+  const head = bound.includes("head") && shells !== undefined ? { head: { shells } } : {};
+  return { ...FIRST_SETTINGS, ...kept, ...head };
 }
 
 /** @param {number[]} flip @param {number} index @returns {number[]} */
