@@ -401,13 +401,17 @@ impl Study {
     }
 
     fn note_the_rest(&mut self) {
-        let referenced = (0..self.count())
-            .filter_map(|index| self.values(index).ok())
-            .filter(|map| {
-                let squares: Vec<f64> = map.iter().map(|v| v * v).collect();
-                mean(map).abs() > 1e-6 * mean(&squares).sqrt()
-            })
-            .count();
+        // Row by row, as the values lie in memory; a map that lacks a value is not a number and passes no comparison.
+        let mut sums = vec![[0.0f64; 2]; self.count()];
+        for electrode in self.placement.used() {
+            for ([sum, squares], value) in sums.iter_mut().zip(self.tables.maps.values.row(electrode.row)) {
+                *sum += value;
+                *squares += value * value;
+            }
+        }
+        let used = self.fitter.field().count() as f64;
+        let off = |[sum, squares]: &&[f64; 2]| (sum / used).abs() > 1e-6 * (squares / used).sqrt();
+        let referenced = sums.iter().filter(off).count();
         if referenced > 0 {
             self.notes.push(Finding::new(Code::AverageReferenced).with("maps", referenced).with("count", self.count()));
         }

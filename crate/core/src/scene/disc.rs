@@ -80,12 +80,23 @@ fn turn(a: DiscPoint, b: DiscPoint, c: DiscPoint) -> f64 {
     (b[0] - a[0]) * (c[1] - a[1]) - (b[1] - a[1]) * (c[0] - a[0])
 }
 
-/// Whether a point lies inside a counter-clockwise convex polygon or at most this far outside.
-pub(super) fn inside(polygon: &[DiscPoint], point: DiscPoint, margin: f64) -> bool {
-    (0..polygon.len()).all(|i| {
-        let (a, b) = (polygon[i], polygon[(i + 1) % polygon.len()]);
-        turn(a, b, point) >= -margin * libm::hypot(b[0] - a[0], b[1] - a[1])
-    })
+/// A counter-clockwise convex polygon, with a margin around it, that is asked about many points.
+pub(super) struct Fence(Vec<(DiscPoint, DiscPoint, f64)>);
+
+impl Fence {
+    /// Around a polygon, at most this far outside.
+    pub(super) fn new(polygon: &[DiscPoint], margin: f64) -> Self {
+        let edge = |i: usize| {
+            let (a, b) = (polygon[i], polygon[(i + 1) % polygon.len()]);
+            (a, b, -margin * libm::hypot(b[0] - a[0], b[1] - a[1]))
+        };
+        Self((0..polygon.len()).map(edge).collect())
+    }
+
+    /// Whether a point lies inside.
+    pub(super) fn holds(&self, point: DiscPoint) -> bool {
+        self.0.iter().all(|(a, b, least)| turn(*a, *b, point) >= *least)
+    }
 }
 
 #[cfg(test)]
@@ -106,6 +117,7 @@ mod tests {
     fn hull_of_a_square_with_points_inside() {
         let points = [[0.0, 0.0], [1.0, 1.0], [-1.0, 1.0], [0.3, 0.2], [-1.0, -1.0], [1.0, -1.0], [0.0, 1.0]];
         assert_eq!(hull(&points), [[-1.0, -1.0], [1.0, -1.0], [1.0, 1.0], [-1.0, 1.0]]);
-        assert!(inside(&hull(&points), [0.9, -0.9], 0.0) && !inside(&hull(&points), [1.1, 0.0], 0.05));
+        let fence = |margin| Fence::new(&hull(&points), margin);
+        assert!(fence(0.0).holds([0.9, -0.9]) && fence(0.15).holds([1.1, 0.0]) && !fence(0.05).holds([1.1, 0.0]));
     }
 }

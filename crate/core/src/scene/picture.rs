@@ -1,4 +1,4 @@
-use super::disc::inside;
+use super::disc::Fence;
 use super::{Contour, Disc, DiscPoint, Spline, contours, hull};
 use crate::math::Vec3;
 
@@ -103,9 +103,10 @@ impl Picture {
         let coefficients = [measured, projected, residual].map(|map| spline.coefficients(map));
         let place = |index: usize| (2.0 * index as f64 + 1.0) / SIZE as f64 - 1.0;
         let mut rasters = [(); 3].map(|()| vec![f64::NAN; SIZE * SIZE]);
+        let fence = Fence::new(&outline, MARGIN);
         for pixel in 0..SIZE * SIZE {
             let point = [place(pixel % SIZE), -place(pixel / SIZE)];
-            if inside(&outline, point, MARGIN) {
+            if fence.holds(point) {
                 let values = spline.values(&coefficients, disc.direction(point));
                 rasters.iter_mut().zip(values).for_each(|(raster, value)| raster[pixel] = value);
             }

@@ -1,5 +1,6 @@
 use crate::math::{Cholesky, Vec3};
 use core::f64::consts::PI;
+use std::sync::LazyLock;
 
 /// Spherical spline interpolation of order 4 (Perrin, Pernier, Bertrand & Echallier 1989, EEG Clin Neurophysiol
 /// 72:184–187, corrigendum 76:565): V(e) = c₀ + Σ cᵢ g(e·eᵢ) with Σ cᵢ = 0.
@@ -9,8 +10,6 @@ pub struct Spline {
     factors: Cholesky,
     /// The solution for values of 1, which carries the constant c₀.
     ones: Vec<f64>,
-    /// g and g′ times the step, at equal steps.
-    table: Vec<[f64; 2]>,
 }
 
 /// Part of g(1) added to the diagonal: 512 electrodes still get their values to 10⁻⁴.
@@ -25,8 +24,6 @@ const STEPS: usize = 4096;
 impl Spline {
     /// Prepares the spline of electrodes in these unit directions; `None` if they cannot carry one.
     pub fn new(directions: Vec<Vec3>) -> Option<Self> {
-        let step = 2.0 / STEPS as f64;
-        let table = (0..=STEPS).map(|i| kernel(i as f64 * step - 1.0)).map(|[g, slope]| [g, slope * step]).collect();
         let [top, _] = kernel(1.0);
         // Electrodes that are very close may need more.
         let factors = [RIDGE, 1e3 * RIDGE, 1e6 * RIDGE].into_iter().find_map(|ridge| {
@@ -36,7 +33,7 @@ impl Spline {
             })
         })?;
         let ones = factors.solve(&vec![1.0; directions.len()]);
-        Some(Self { directions, factors, ones, table })
+        Some(Self { directions, factors, ones })
     }
 
     /// Coefficients c₀, c₁, … of a map.
@@ -48,26 +45,41 @@ impl Spline {
 
     /// Values of several maps, given by their coefficients, in one direction.
     pub fn values<const N: usize>(&self, coefficients: &[(f64, Vec<f64>); N], direction: Vec3) -> [f64; N] {
+        let table = table();
         let mut values = core::array::from_fn(|k| coefficients[k].0);
         for (index, e) in self.directions.iter().enumerate() {
-            let g = self.kernel(direction.dot(*e));
+            let g = interpolated(table, direction.dot(*e));
             for (value, (_, c)) in values.iter_mut().zip(coefficients) {
                 *value += c[index] * g;
             }
         }
         values
     }
+}
 
-    /// g from the table, by cubic Hermite interpolation.
-    #[inline]
-    fn kernel(&self, cosine: f64) -> f64 {
-        let position = ((cosine + 1.0) * 0.5 * STEPS as f64).clamp(0.0, STEPS as f64);
-        let index = (position as usize).min(STEPS - 1);
-        let t = position - index as f64;
-        let ([a, slope_a], [b, slope_b]) = (self.table[index], self.table[index + 1]);
-        let rise = b - a;
-        a + t * (slope_a + t * (3.0 * rise - 2.0 * slope_a - slope_b + t * (slope_a + slope_b - 2.0 * rise)))
-    }
+/// g and g′ times the step, at equal steps.
+fn table() -> &'static [[f64; 2]; STEPS + 1] {
+    static TABLE: LazyLock<Box<[[f64; 2]; STEPS + 1]>> = LazyLock::new(|| {
+        let step = 2.0 / STEPS as f64;
+        let mut table = Box::new([[0.0; 2]; STEPS + 1]);
+        for (i, entry) in table.iter_mut().enumerate() {
+            let [g, slope] = kernel(i as f64 * step - 1.0);
+            *entry = [g, slope * step];
+        }
+        table
+    });
+    &TABLE
+}
+
+/// g from the table, by cubic Hermite interpolation.
+#[inline]
+fn interpolated(table: &[[f64; 2]; STEPS + 1], cosine: f64) -> f64 {
+    let position = ((cosine + 1.0) * 0.5 * STEPS as f64).clamp(0.0, STEPS as f64);
+    let index = (position as usize).min(STEPS - 1);
+    let t = position - index as f64;
+    let ([a, slope_a], [b, slope_b]) = (table[index], table[index + 1]);
+    let rise = b - a;
+    a + t * (slope_a + t * (3.0 * rise - 2.0 * slope_a - slope_b + t * (slope_a + slope_b - 2.0 * rise)))
 }
 
 /// g(x) = 1/(4π) Σₙ (2n + 1) / (n (n + 1))⁴ Pₙ(x) and its slope.
