@@ -245,6 +245,76 @@ test("units scale the strength alone", () => {
   assert.deepEqual(volt.dipole.position_mm, micro.dipole.position_mm);
 });
 
+test("heads to choose from are taken as they are and recognised", () => {
+  const { heads } = engine;
+  assertPlain(heads, "heads");
+  assert.ok(heads.length >= 4 && heads.length <= 6);
+  const plain = engine.analyse({ electrodes, maps });
+  assert.equal(plain.head.name, heads[0].name);
+  for (const { name, title, source, shells } of heads) {
+    assert.ok(title.length > 5 && source.length > 5);
+    const report = engine.analyse({ electrodes, maps, settings: { head: { shells } } });
+    assertReport(report);
+    assert.equal(report.head.name, name);
+    assert.deepEqual(report.settings.head.shells, shells);
+    if (name === heads[0].name) assert.deepEqual(report.maps, plain.maps);
+    else assert.notDeepEqual(report.maps[0].dipole.position_mm, plain.maps[0].dipole.position_mm);
+  }
+  const [{ shells }] = heads;
+  shells[2].conductivity *= 2;
+  assert.equal(engine.analyse({ electrodes, maps, settings: { head: { shells } } }).head.name, null);
+  assert.notEqual(engine.heads[0].shells[2].conductivity, shells[2].conductivity, "the catalogue is not the caller's");
+});
+
+test("a study under other settings is what a new one is, and lives by itself", () => {
+  const study = engine.open({ electrodes, maps });
+  const settings = { exclude: ["Cz"], flip: [1], polarity: "declared", activationSd: [null, 2] };
+  const expected = engine.analyse({ electrodes, maps, settings });
+  assertReport(expected);
+  const other = study.with(settings);
+  settings.exclude.push("Pz");
+  study.close();
+  for (let k = 0; k < 2; k++) {
+    assert.deepEqual(other.preamble(), { ...expected, maps: [] });
+    assert.deepEqual(other.electrodes, expected.electrodes);
+    expected.maps.forEach((map, index) => assert.deepEqual(other.fit(index), map));
+    globalThis.armTrap();
+    assert.equal(thrown(() => other.fit(0)).code, "engine-trap");
+  }
+  assert.equal(thrown(() => study.with({})).code, "study-closed");
+  assert.equal(thrown(() => other.with({ flip: [99] })).code, "map-index");
+  assert.equal(thrown(() => other.with({ activationSd: [0] })).code, "activation-sd-invalid");
+  assert.equal(thrown(() => other.with({ colour: "red" })).code, "settings-unknown");
+  const back = other.with();
+  assert.deepEqual(back.fit(0), engine.analyse({ electrodes, maps }).maps[0]);
+  other.close();
+  back.close();
+});
+
+test("the sheet tells electrodes, figure and head", () => {
+  const study = engine.open({ electrodes, maps, settings: { exclude: ["Cz"] } });
+  const { picture, ...sheet } = study.sheet(0);
+  assertPlain(sheet, "sheet");
+  assert.equal(Object.keys(sheet).sort().join(" "), "alt electrodes figure head rows scale sentence");
+  assert.equal(Object.keys(sheet.alt).sort().join(" "), "above behind left measured projected residual turned");
+  assert.deepEqual(sheet.electrodes.map((e) => [e.label, e.used]), picture.electrodes.map((e) => [e.label, e.used]));
+  assert.deepEqual(sheet.electrodes.filter((e) => !e.used).map((e) => e.label), ["Cz"]);
+  assert.equal(sheet.figure.electrodes.length, picture.electrodes.length);
+  assert.equal(sheet.figure.axis, true);
+  const codes = sheet.rows.map((row) => row.code);
+  for (const code of [
+    "residual_variance", "variance_explained", "adjusted_rv", "degrees_of_freedom", "electrodes", "nearest_site", "side",
+    "depth_mm", "eccentricity", "canonical_mm", "position_mm", "canonical_direction", "direction", "polarity",
+    "radial_share", "strength", "head", "head_radius_mm",
+  ]) {
+    assert.ok(codes.includes(code), code);
+  }
+  for (const row of [...sheet.rows, ...sheet.head.rows]) {
+    assert.ok(row.label !== "" && row.value !== "" && row.meaning.endsWith("."), JSON.stringify(row));
+  }
+  study.close();
+});
+
 test("errors point to the place", () => {
   const lines = electrodes.trim().split("\n");
   lines[5] = lines[5].replace(/\S+$/, "far");

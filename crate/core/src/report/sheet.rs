@@ -409,20 +409,13 @@ fn head_sheet(head: &HeadReport) -> HeadSheet {
         ),
     ];
     for (index, shell) in head.shells.iter().enumerate() {
-        let number = index + 1;
+        let [radius, conductivity] = [tenths(shell.outer_radius_mm), given(shell.conductivity_s_per_m)];
         rows.push(row(
-            format!("shell_{number}_outer_radius_mm"),
-            format!("{}, outer radius", shell.tissue),
-            tenths(shell.outer_radius_mm),
-            "mm",
-            "From the centre of the sphere to the outer surface of this shell.",
-        ));
-        rows.push(row(
-            format!("shell_{number}_conductivity_s_per_m"),
-            format!("{}, conductivity", shell.tissue),
-            given(shell.conductivity_s_per_m),
-            "S/m",
-            "The same in all directions.",
+            format!("shell_{}", index + 1),
+            capitalised(&shell.tissue),
+            format!("{radius} mm, {conductivity} S/m"),
+            "",
+            "Outer radius and conductivity.",
         ));
     }
     if let (Some(skull), Some(brain)) = (skull(head), head.shells.first()) {
@@ -445,6 +438,11 @@ fn row(
     meaning: &'static str,
 ) -> Row {
     Row { code: code.into(), label: label.into(), value, unit, meaning }
+}
+
+fn capitalised(word: &str) -> String {
+    let mut letters = word.chars();
+    letters.next().map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
 }
 
 fn triple(vector: Vec3, text: fn(f64) -> String) -> String {
