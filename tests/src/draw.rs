@@ -17,6 +17,11 @@ impl Draw {
         low + (high - low) * self.0.random::<f64>()
     }
 
+    /// One of the numbers below `count`.
+    pub fn below(&mut self, count: usize) -> usize {
+        self.0.random_range(0..count)
+    }
+
     /// Normally distributed, mean 0, deviation 1 (Box & Muller 1958).
     pub fn normal(&mut self) -> f64 {
         let radius = (-2.0 * (1.0 - self.0.random::<f64>()).ln()).sqrt();

@@ -3,7 +3,7 @@
 use inward_core::read::{Body, Format, Part, mat, npy, signature, zip};
 use inward_core::report::ErrorReport;
 use inward_core::{Error, Finding};
-use inward_tests::{sample, samples};
+use inward_tests::{archive, level5, sample, samples};
 use serde_json::Value;
 use std::collections::BTreeMap;
 
@@ -32,7 +32,7 @@ fn equal(part: &Part, expected: &Value, context: &str) {
     assert_eq!(part.name.as_deref(), expected["name"].as_str(), "{context}");
     match &part.body {
         Body::Numbers(numbers) => {
-            let shape = [numbers.nrows(), numbers.ncols()].map(|size| Value::from(size));
+            let shape = [numbers.nrows(), numbers.ncols()].map(Value::from);
             assert_eq!([&shape[0], &shape[1]], [&expected["rows"], &expected["columns"]], "{context}");
             // `null` stands for NaN; all else to the bit.
             let values = expected["values"].as_array().unwrap().iter().map(|value| value.as_f64().map(f64::to_bits));
@@ -170,77 +170,23 @@ fn no_beginning_of_a_file_is_taken_for_the_whole() {
     }
 }
 
-fn zlib(bytes: &[u8]) -> Vec<u8> {
-    miniz_oxide::deflate::compress_to_vec_zlib(bytes, 6)
-}
-
-/// A level-5 file around elements.
-fn level_5(elements: impl IntoIterator<Item = (u32, Vec<u8>)>) -> Vec<u8> {
-    let mut file = b"MATLAB 5.0 MAT-file".to_vec();
-    file.resize(124, b' ');
-    file.extend(b"\0\x01IM");
-    for (kind, data) in elements {
-        file.extend(kind.to_le_bytes());
-        file.extend((data.len() as u32).to_le_bytes());
-        file.extend(data);
-    }
-    file
-}
-
 #[test]
 fn what_unpacks_to_more_than_the_limit_is_refused() {
     let code = |file: &[u8]| read(file).err().map(|error| ErrorReport::from(&error).code.as_str());
     let zeros = vec![0; (64 << 20) + 1];
-    assert_eq!(code(&level_5([(15, zlib(&zeros))])), Some("input-too-large"));
-    // Several that are below it one by one. Each unpacks to a variable that is not there: an element of zeros.
-    let mut half = 14_u32.to_le_bytes().to_vec();
-    half.extend((40_u32 << 20).to_le_bytes());
-    // Flags of an empty sparse matrix without a name: passed over in silence.
-    half.extend([6, 0, 0, 0, 8, 0, 0, 0, 5, 0, 0, 0, 0, 0, 0, 0, 5, 0, 0, 0, 8, 0, 0, 0]);
-    half.extend([0; 8]);
-    half.extend([1, 0, 0, 0, 0, 0, 0, 0]);
-    half.resize(8 + (40 << 20), 0);
-    let half = zlib(&half);
-    assert_eq!(code(&level_5([(15, half.clone())])), Some("input-empty"));
-    assert_eq!(code(&level_5([(15, half.clone()), (15, half)])), Some("input-too-large"));
+    assert_eq!(code(&level5::file(&[level5::packed(&zeros)])), Some("input-too-large"));
+    // Two that are below it one by one.
+    let half = level5::packed(&level5::matrix(5, 1, 1, "S", &zeros[..40 << 20]));
+    assert_eq!(code(&level5::file(std::slice::from_ref(&half))), Some("array-type"));
+    assert_eq!(code(&level5::file(&[half.clone(), half])), Some("input-too-large"));
 
-    let packed = miniz_oxide::deflate::compress_to_vec(&zeros, 6);
-    for (said, expected) in [(zeros.len(), "input-too-large"), (1000, "input-damaged")] {
-        assert_eq!(code(&archive(&packed, said, 1)), Some(expected));
-    }
-    // The same megabyte under many names.
-    let megabyte = miniz_oxide::deflate::compress_to_vec(&zeros[..1 << 20], 6);
-    assert_eq!(code(&archive(&megabyte, 1 << 20, 1)), None);
-    assert_eq!(code(&archive(&megabyte, 1 << 20, 65)), Some("input-too-large"));
-}
-
-/// An archive of one file under several names; `size` is what its directory says. Content of zeros.
-fn archive(packed: &[u8], size: usize, names: u16) -> Vec<u8> {
-    let mut sum = !0_u32;
-    for _ in 0..size {
-        sum ^= 0;
-        for _ in 0..8 {
-            sum = (sum >> 1) ^ if sum & 1 == 1 { 0xedb8_8320 } else { 0 };
-        }
-    }
-    let mut rest = Vec::new();
-    for number in [!sum, packed.len() as u32, size as u32] {
-        rest.extend(number.to_le_bytes());
-    }
-    let mut file = b"PK\x03\x04\x14\0\0\0\x08\0\0\0\0\0".to_vec();
-    file.extend(&rest);
-    file.extend([1, 0, 0, 0, b'a']);
-    file.extend(packed);
-    let begin = file.len() as u32;
-    for _ in 0..names {
-        file.extend(b"PK\x01\x02\x14\0\x14\0\0\0\x08\0\0\0\0\0");
-        file.extend(&rest);
-        file.extend([1, 0, 0, 0, 0, 0, 0, 0, 0, 0, 0, 0, 0, 0, 0, 0, 0, 0, b'a']);
-    }
-    let length = file.len() as u32 - begin;
-    file.extend(b"PK\x05\x06\0\0\0\0");
-    file.extend([names.to_le_bytes(), names.to_le_bytes()].concat());
-    file.extend([length.to_le_bytes(), begin.to_le_bytes()].concat());
-    file.extend([0, 0]);
-    file
+    let whole = archive(&[("a.tsv".to_owned(), zeros.clone())], true);
+    assert_eq!(code(&whole), Some("input-too-large"));
+    // A directory that says less than there is.
+    let size = whole.windows(4).rposition(|four| four == (zeros.len() as u32).to_le_bytes()).unwrap();
+    let liar = [&whole[..size], &1000_u32.to_le_bytes(), &whole[size + 4..]].concat();
+    assert_eq!(code(&liar), Some("input-damaged"));
+    let megabyte = |count: usize| archive(&vec![("a.tsv".to_owned(), zeros[..1 << 20].to_vec()); count], true);
+    assert_eq!(code(&megabyte(64)), None);
+    assert_eq!(code(&megabyte(65)), Some("input-too-large"));
 }
