@@ -1,7 +1,9 @@
 //! Every error and every note, brought about by an input that deserves it.
-use inward_core::head::ShellSpec;
-use inward_core::read::{Format, mat, npy, signature, zip};
-use inward_core::report::{ErrorReport, HeadSettings, hint};
+use inward_core::electrode::Label;
+use inward_core::head::{LengthUnit, ShellSpec};
+use inward_core::placement::{Wishes, place};
+use inward_core::read::{Format, mat, npy, read_electrodes, read_maps, signature, zip};
+use inward_core::report::{ErrorReport, HeadSettings, Note, hint};
 use inward_core::{Code, Error, MapReport, Report, Request, Settings, Study, Vec3, analyse};
 use inward_tests::{Draw, Electrodes, example, sample};
 use std::collections::BTreeSet;
@@ -385,6 +387,22 @@ fn every_note_is_given_when_it_applies_and_not_otherwise() {
     }
     let (_, passed_over) = mat::read(&sample("passed_over.mat")).unwrap();
     met.extend(passed_over.iter().map(|note| note.code.as_str()));
+    // What files declare beside the tables.
+    let (table, read) = (read_electrodes(e.as_bytes()).unwrap().0, read_maps(m.as_bytes()).unwrap().0);
+    let bad = vec![Label::new("Cz")];
+    let declared: [(&str, &str, Wishes); 3] = [
+        ("unit-overruled", "warning", Wishes { declared_unit: Some(LengthUnit::Metre), ..Wishes::default() }),
+        ("channels-bad", "info", Wishes { bad: bad.clone(), ..Wishes::default() }),
+        ("unmixing-not-redone", "info", Wishes { components: true, exclude: bad, ..Wishes::default() }),
+    ];
+    for (code, severity, wishes) in declared {
+        let notes = place(Some(&table), &read, &wishes).unwrap().notes;
+        let found: Vec<Note> = notes.iter().map(Note::from).collect();
+        let found: Vec<(&str, &str)> = found.iter().map(|note| (note.code.as_str(), note.severity)).collect();
+        assert!(found.contains(&(code, severity)), "{code}: {found:?}");
+        assert!(!usual.contains(&(code, severity)), "{code}");
+        met.insert(code);
+    }
     let known: BTreeSet<&str> =
         Code::ALL.iter().filter(|code| hint(**code).is_empty()).map(|code| code.as_str()).collect();
     assert_eq!(met, known, "every note of the list is brought about");

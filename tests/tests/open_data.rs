@@ -104,7 +104,20 @@ fn measured_heads_are_read_and_fitted() {
         );
         assert!((report.head.radius_mm - radius).abs() < 0.06, "{name}: {}", report.head.radius_mm);
         assert!((report.head.fit_rms_mm - rms).abs() < 0.06, "{name}: {}", report.head.fit_rms_mm);
-        let note = report.notes.iter().find(|note| note.code.as_str() == "unit-recognised").unwrap();
-        assert!(note.message.contains("metres"), "{}", note.message);
+        let note = |report: &Report, code: &str| {
+            report.notes.iter().find(|note| note.code.as_str() == code).map(|note| note.message.clone())
+        };
+        let unit = note(&report, "unit-recognised").unwrap();
+        assert!(unit.contains("metres"), "{unit}");
+        // The labels tell no axes; the points of the file of coordinates do, here as rows of the table.
+        assert!(note(&report, "axes-assumed").is_some() && note(&report, "axes-found").is_none());
+        let Some(coordinates) = open_data(&name.replace("electrodes.tsv", "coordsystem.json")) else { continue };
+        let coordinates: serde_json::Value = serde_json::from_str(&coordinates).unwrap();
+        let points = coordinates["AnatomicalLandmarkCoordinates"].as_object().unwrap();
+        let rows: String = points.iter().map(|(label, p)| format!("{label}\t{}\t{}\t{}\n", p[0], p[1], p[2])).collect();
+        let told = self::report(Some(&format!("{}\n{rows}", table.trim_end())), &maps, &[]);
+        let axes = note(&told, "axes-found").unwrap();
+        assert!(axes.contains("ears and nose") && axes.contains("x to the right, y to the front, z up"), "{axes}");
+        assert_eq!(told.maps, report.maps);
     }
 }

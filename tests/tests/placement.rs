@@ -1,5 +1,9 @@
 //! Labels as people write them, heads as they lie in their tables.
-use inward_core::head::{Axes, AxesName};
+use inward_core::electrode::{Label, Landmark};
+use inward_core::finding::Origin;
+use inward_core::head::{Axes, AxesName, LengthUnit};
+use inward_core::placement::{Evidence, Placement, Wishes, place};
+use inward_core::read::{read_electrodes, read_maps};
 use inward_core::report::FittedMap;
 use inward_core::{Error, MapReport, Report, Request, Settings, Vec3, analyse};
 use inward_tests::{Draw, Electrodes, PlainSeries, example};
@@ -405,4 +409,62 @@ fn heads_from_40_to_120_mm_are_computed() {
         let positions: Vec<Vec3> = set.directions.iter().map(|&e| e * radius).collect();
         assert_eq!(try_run(Some(&set.table(&positions)), &maps, Settings::default()).is_ok(), good, "{radius}");
     }
+}
+
+fn placed(electrodes: &str, maps: &str, wishes: &Wishes) -> Placement {
+    let (table, maps) = (read_electrodes(electrodes.as_bytes()).unwrap().0, read_maps(maps.as_bytes()).unwrap().0);
+    place(Some(&table), &maps, wishes).unwrap()
+}
+
+/// What files beside the tables say: points of the head in the unit of the table, what channels measure, a unit.
+#[test]
+fn what_files_declare_is_heeded() {
+    let (e, m) = (electrodes(), maps());
+    let anonymous = |label: &str| format!("S-{}", label.replace(['z', 'Z'], "0"));
+    for name in AxesName::all() {
+        let turn = |p: Vec3| (name.axes().to_table(p) + SHIFT) * 0.001;
+        let landmarks = vec![
+            (Landmark::Nasion, turn(Vec3::new(0.0, 97.0, -6.0))),
+            (Landmark::Right, turn(Vec3::new(76.0, 0.0, -3.0))),
+            (Landmark::Left, turn(Vec3::new(-74.0, 1.0, -4.0))),
+        ];
+        let table = changed(&e, anonymous, turn);
+        let wishes = Wishes { landmarks, declared_unit: Some(LengthUnit::Millimetre), ..Wishes::default() };
+        let placement = placed(&table, &relabelled(&m, anonymous), &wishes);
+        assert_eq!((placement.axes.name, placement.axes.evidence), (Some(name), Evidence::Landmarks));
+        assert!(placement.notes.iter().any(|note| note.code.as_str() == "unit-overruled"));
+        let units = placement.choices.iter().find(|choice| choice.setting == "units").unwrap();
+        assert_eq!((units.from, &units.value), (Origin::Found, &"m".into()));
+        let axes = placement.choices.iter().find(|choice| choice.setting == "axes").unwrap();
+        assert_eq!((axes.from, &axes.value), (Origin::Found, &name.to_string().as_str().into()));
+        assert!(axes.options.iter().any(|(option, _)| *option == axes.value), "what is in force can be chosen");
+    }
+    let millimetres = |unit| Wishes { declared_unit: Some(unit), ..Wishes::default() };
+    let placement = placed(&e, &m, &millimetres(LengthUnit::Millimetre));
+    assert_eq!(placement.choices[0].from, Origin::Declared);
+    assert!(!placement.notes.iter().any(|note| note.code.as_str() == "unit-overruled"));
+    let wrong = Wishes { unit: Some(LengthUnit::Metre), ..Wishes::default() };
+    let (table, read) = (read_electrodes(e.as_bytes()).unwrap().0, read_maps(m.as_bytes()).unwrap().0);
+    assert_eq!(place(Some(&table), &read, &wrong).unwrap_err().finding().code.as_str(), "units-unrecognised");
+
+    let more = m.clone() + "EMG1\t1\t2\t3\t4\t5\t6\n";
+    let table = e.clone() + "EMG1\t50\t-60\t90\n";
+    let label = || vec![Label::new("emg1")];
+    assert_eq!(placed(&table, &more, &Wishes::default()).labels.not_scalp, ["EMG1"]);
+    let scalp = placed(&table, &more, &Wishes { scalp: label(), ..Wishes::default() });
+    assert_eq!((scalp.labels.matched, scalp.electrodes.len()), (71, 71));
+    let other = placed(&e, &m, &Wishes { other_channels: vec![Label::new("cz")], ..Wishes::default() });
+    assert_eq!((other.labels.not_scalp, other.electrodes.len()), (vec!["Cz".to_owned()], 69));
+}
+
+/// A reference that has a place is an electrode, one without is none.
+#[test]
+fn a_reference_with_a_place_is_an_electrode() {
+    let (e, m) = (electrodes(), maps() + "REF\t0\t0\t0\t0\t0\t0\n");
+    let without = run(Some(&e), &m, Settings::default());
+    assert!(note(&without, "not-scalp").unwrap().contains("REF"));
+    assert_eq!(note(&without, "reference-channel"), None);
+    let with = run(Some(&(e + "Ref\t9.7\t30.1\t140.2\n")), &m, Settings::default());
+    assert_eq!(with.electrodes.len(), without.electrodes.len() + 1);
+    assert!(note(&with, "reference-channel").unwrap().contains("Ref"));
 }

@@ -280,6 +280,12 @@ codes! {
     PositionsApproximate = "positions-approximate",
     /// Note: channels whose values were interpolated.
     Interpolated = "interpolated",
+    /// Note: channels that a file declares bad.
+    ChannelsBad = "channels-bad",
+    /// Note: electrodes were left out after an unmixing, which was not redone.
+    UnmixingNotRedone = "unmixing-not-redone",
+    /// Note: a declared unit of length that the size of the head contradicts.
+    UnitOverruled = "unit-overruled",
     /// Note: how far the electrodes lie off the sphere that they are projected on.
     ElectrodesProjected = "electrodes-projected",
     /// Note: the standard shells do not hold for this head.

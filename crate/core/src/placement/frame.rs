@@ -68,10 +68,21 @@ pub(super) fn recognise_unit(
         Finding::new(Code::UnitsUnrecognised).at(place).with("label", label)
     };
     let sphere = Sphere::fit(&points).ok_or_else(unrecognised)?.sphere;
-    let origin = if wishes.unit.is_some() { Origin::Setting } else { Origin::Found };
-    let mut choose = |unit: &str| choices.push(Choice::new("units", origin, unit).options(["m", "cm", "mm"]));
+    let mut choose = |unit: Option<LengthUnit>| {
+        let origin = match (wishes.unit, wishes.declared_unit) {
+            (Some(_), _) => Origin::Setting,
+            (None, Some(declared)) if unit == Some(declared) => Origin::Declared,
+            _ => Origin::Found,
+        };
+        let symbol = unit.map_or("sphere", LengthUnit::symbol);
+        choices.push(Choice::new("units", origin, symbol).options(["m", "cm", "mm"]));
+        if let Some(declared) = wishes.declared_unit.filter(|_| origin == Origin::Found) {
+            let finding = Finding::new(Code::UnitOverruled).at(Place::input("electrodes"));
+            notes.push(finding.with("declared", declared.symbol()).with("unit", symbol));
+        }
+    };
     if wishes.unit.is_none() && sphere.is_unit() {
-        choose("sphere");
+        choose(None);
         return Ok(Frame::Directions(Code::UnitSphereScaled));
     }
     let unit = match wishes.unit.or(LengthUnit::of_head(sphere.radius)) {
@@ -82,7 +93,7 @@ pub(super) fn recognise_unit(
         }
         None => return Err(unrecognised().with("radius", sphere.radius).into()),
     };
-    choose(unit.symbol());
+    choose(Some(unit));
     let millimetres = unit.millimetres();
     let sphere = Sphere { centre: sphere.centre * millimetres, radius: sphere.radius * millimetres };
     notes.push(

@@ -41,19 +41,17 @@ struct Names<'a> {
 impl<'a> Names<'a> {
     fn new(labels: Vec<&'a Label>) -> Self {
         let mut readings: Vec<Reading> = labels.iter().map(|label| Reading::of(label)).collect();
-        // Where A3 or E3 is an electrode, A1 is no ear and E1 no eye.
-        let keys: BTreeSet<&str> = readings.iter().map(|reading| reading.key.as_str()).collect();
-        let series: Vec<bool> = readings
-            .iter()
-            .map(|reading| {
-                let letter = reading.key.trim_end_matches(['1', '2']);
-                ["a", "m", "e"].contains(&letter) && keys.contains(format!("{letter}3").as_str())
-            })
-            .collect();
-        for ((reading, label), series) in readings.iter_mut().zip(&labels).zip(series) {
+        // Where A3 or E17 is an electrode, A1 is no ear and E1 no eye.
+        let beyond = |letter: char| {
+            let number = |reading: &Reading| reading.key.strip_prefix(letter).and_then(|rest| rest.parse::<u32>().ok());
+            readings.iter().filter_map(number).any(|number| number > 2)
+        };
+        let [ears, mastoids, eyes] = ['a', 'm', 'e'].map(beyond);
+        for (reading, label) in readings.iter_mut().zip(&labels) {
             match reading.key.as_str() {
-                "a1" | "a2" | "m1" | "m2" if series => forget(reading, label),
-                "e1" | "e2" if !series => reading.kind = Kind::Other(Other::Eye),
+                "a1" | "a2" if ears => forget(reading, label),
+                "m1" | "m2" if mastoids => forget(reading, label),
+                "e1" | "e2" if !eyes => reading.kind = Kind::Other(Other::Eye),
                 _ => {}
             }
         }

@@ -76,6 +76,8 @@ pub struct Wishes {
     pub exclude: Vec<Label>,
     /// Labels whose values were interpolated: left out too.
     pub interpolated: Vec<Label>,
+    /// Labels that a file declares bad: left out too.
+    pub bad: Vec<Label>,
     /// Channels that a file declares not to measure the scalp.
     pub other_channels: Vec<Label>,
     /// Channels that a file declares to measure the scalp, whatever their names.
@@ -86,8 +88,12 @@ pub struct Wishes {
     pub mirror: Option<bool>,
     /// Points of the head in the frame and unit of the electrode table.
     pub landmarks: Vec<(Landmark, Vec3)>,
-    /// Unit of the electrode table.
+    /// Unit of the electrode table, as the user sets it.
     pub unit: Option<LengthUnit>,
+    /// Unit of the electrode table, as a file declares it: the size of the head has the last word.
+    pub declared_unit: Option<LengthUnit>,
+    /// Whether the maps come from an unmixing.
+    pub components: bool,
     /// Centre of the head in the frame of the electrode table.
     pub centre_mm: Option<Vec3>,
     /// Scalp radius.
@@ -317,7 +323,12 @@ fn refuse_far(electrodes: &[Placed], sphere: Sphere, wishes: &Wishes) -> Result<
 /// Leaves out what is named by a label of either table as written, else by what is in it.
 fn leave_out(electrodes: &mut [Placed], wishes: &Wishes, found: &mut LabelsFound, notes: &mut Vec<Finding>) {
     let mut unmatched: Vec<String> = Vec::new();
-    for (code, labels) in [(Code::Excluded, &wishes.exclude), (Code::Interpolated, &wishes.interpolated)] {
+    let lists = [
+        (Code::Excluded, &wishes.exclude),
+        (Code::Interpolated, &wishes.interpolated),
+        (Code::ChannelsBad, &wishes.bad),
+    ];
+    for (code, labels) in lists {
         let mut named: Vec<String> = Vec::new();
         for label in labels {
             let exactly = |e: &&mut Placed| e.keys.iter().take(2).any(|key| *key == label.key());
@@ -329,7 +340,12 @@ fn leave_out(electrodes: &mut [Placed], wishes: &Wishes, found: &mut LabelsFound
                 electrode.used = false;
                 any = true;
             }
-            if any { &mut named } else { &mut unmatched }.push(label.to_string());
+            // A file may call channels bad that are not on the scalp.
+            match any {
+                true => named.push(label.to_string()),
+                false if code == Code::ChannelsBad => {}
+                false => unmatched.push(label.to_string()),
+            }
         }
         if !named.is_empty() {
             notes.push(Finding::new(code).with("labels", named.clone()));
@@ -337,6 +353,9 @@ fn leave_out(electrodes: &mut [Placed], wishes: &Wishes, found: &mut LabelsFound
         if code == Code::Interpolated {
             found.interpolated = named;
         }
+    }
+    if wishes.components && electrodes.iter().any(|e| !e.used) {
+        notes.push(Finding::new(Code::UnmixingNotRedone));
     }
     if !unmatched.is_empty() {
         notes.push(Finding::new(Code::ExcludeUnmatched).with("labels", unmatched));

@@ -207,6 +207,18 @@ pub fn message(finding: &Finding) -> String {
         ),
         Code::PositionsApproximate => format!("Mastoids and ear lobes stand at approximate places: {}.", value("labels")),
         Code::Interpolated => format!("Left out, because interpolated values are no data: {}.", value("labels")),
+        Code::ChannelsBad => format!("Left out, because a file calls them bad: {}.", value("labels")),
+        Code::UnmixingNotRedone => {
+            "Electrodes were left out after the unmixing, which is not redone: the components remain those of all channels.".into()
+        }
+        Code::UnitOverruled => format!(
+            "The positions are declared to be in {}, which the size of the head contradicts: they were taken as {}.",
+            unit_word(&value("declared")),
+            match value("unit").as_str() {
+                "sphere" => "directions on a unit sphere",
+                unit => unit_word(unit),
+            }
+        ),
         Code::ElectrodesProjected => format!(
             "Electrodes are projected onto the sphere along its radius; they lie {} mm off it (rms), {} farthest, {} mm.",
             number(finding, "rms_mm").map(tenths).unwrap_or_default(),
@@ -343,6 +355,7 @@ pub fn is_warning(code: Code) -> bool {
             | Code::AxesContradicted
             | Code::Mirrored
             | Code::ChannelsZero
+            | Code::UnitOverruled
             | Code::UnusualHead
             | Code::LaplacianSuspected
             | Code::FewElectrodes
