@@ -68,7 +68,11 @@ fn native_and_wasm_give_equal_bits() {
     let mut draw = Draw::from(64);
     let mut cases = vec![
         case(Some(&example("watch_electrodes.tsv")), &example("watch_maps.tsv"), json!({})),
-        case(None, &example("watch_maps.tsv"), json!({ "mapUnit": "V", "exclude": ["Cz", "T7"] })),
+        case(
+            None,
+            &example("watch_maps.tsv"),
+            json!({ "mapUnit": "V", "exclude": ["Cz", "T7"], "flip": [1, 2], "activationSd": [null, 0.3] }),
+        ),
     ];
     for (count, unit) in [(19, 1.0), (32, 0.1), (71, 0.001), (128, 1.0), (256, 1.0)] {
         let set = Electrodes::set(count);
