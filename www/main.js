@@ -7,10 +7,12 @@ import { writeWords } from "./text/words.js";
 import { showAnswer } from "./views/answer.js";
 import { showChoice } from "./views/choice.js";
 import { showColophon } from "./views/colophon.js";
+import { showElectrodes } from "./views/electrodes.js";
 import { need } from "./views/element.js";
 import { showExamples } from "./views/examples.js";
 import { showFailure } from "./views/failure.js";
 import { showHead } from "./views/head.js";
+import { showHeadViews } from "./views/head_views.js";
 import { showIntake } from "./views/intake.js";
 import { showMaps } from "./views/maps.js";
 import { showNotes } from "./views/notes.js";
@@ -38,7 +40,9 @@ for (const show of [
   showChoice,
   showMaps,
   showSign,
+  showHeadViews,
   showNumbers,
+  showElectrodes,
   showHead,
   showNotes,
   showColophon,

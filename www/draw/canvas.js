@@ -36,17 +36,27 @@ export function surroundingsOf(canvas, printing) {
 }
 
 /**
- * Sizes the bitmap to the canvas's place on the page; drawing then happens in CSS pixels.
+ * Sizes the bitmap to the canvas's place on the page; drawing then happens in CSS pixels, or in smaller ones where the
+ * place is narrower than what is drawn needs.
  * @param {HTMLCanvasElement} canvas
  * @param {number} ratio
+ * @param {number} [least] the width that is needed
  */
-export function openCanvas(canvas, ratio) {
-  const width = canvas.clientWidth;
-  const height = canvas.clientHeight;
+export function openCanvas(canvas, ratio, least = 0) {
+  const shrink = shrinkOf(canvas, least);
+  const width = canvas.clientWidth * shrink;
+  const height = canvas.clientHeight * shrink;
   const pen = canvas.getContext("2d");
   if (pen === null || width === 0 || height === 0) return null;
-  canvas.width = Math.round(width * ratio);
-  canvas.height = Math.round(height * ratio);
-  pen.setTransform(canvas.width / width, 0, 0, canvas.height / height, 0, 0);
+  const [across, down] = [Math.round(canvas.clientWidth * ratio), Math.round(canvas.clientHeight * ratio)];
+  // Giving a canvas the size it has is slow.
+  if (canvas.width !== across || canvas.height !== down) Object.assign(canvas, { width: across, height: down });
+  else pen.reset();
+  pen.setTransform(across / width, 0, 0, down / height, 0, 0);
   return { pen, width, height };
+}
+
+/** Drawn pixels in a CSS pixel. @param {HTMLCanvasElement} canvas @param {number} least */
+export function shrinkOf(canvas, least) {
+  return Math.max(1, least / Math.max(1, canvas.clientWidth));
 }

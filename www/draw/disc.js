@@ -4,7 +4,7 @@
  */
 
 import { openCanvas } from "./canvas.js";
-import { harmless } from "../text/figures.js";
+import { letterFont, markDipole, markElectrode, markPointed, shortLabel, writeHaloed } from "./marks.js";
 import { colourOfShare, colourTable, cssColour } from "./scale.js";
 
 /** @import { Surroundings } from "./canvas.js" */
@@ -12,20 +12,28 @@ import { colourOfShare, colourTable, cssColour } from "./scale.js";
 
 const TABLE_STEPS = 511;
 /** CSS pixels around the disc for the letters. */
-const MARGIN = 20;
+const DISC_MARGIN = 20;
 /** CSS pixels from an electrode to its label. */
-const LABEL_DISTANCE = 12;
-/** Letters of a label that are shown. */
-const MOST_LETTERS = 8;
+const EXTREME_DISTANCE = 12;
+/** Half of the dipole's line, in CSS pixels, when it lies level. */
+const HALF_LINE = 20;
 
 /**
  * @typedef {object} DiscContent
  * @property {Picture} picture
  * @property {MapRole} role
  * @property {boolean} dipole whether the equivalent dipole is marked
+ * @property {Figure} figure
+ * @property {number} pointed the electrode pointed at, or -1
  * @property {string} stretched written on the map when it has a stretch of its own, otherwise empty
  * @property {{ front: string, left: string, right: string, above: string }} words
  */
+
+/**
+ * Pointing paints the same raster again and again.
+ * @type {WeakMap<Float32Array, { theme: Theme, image: HTMLCanvasElement }>}
+ */
+const IMAGES = new WeakMap();
 
 /**
  * @param {Float32Array} raster shares of the picture's limit
@@ -34,7 +42,10 @@ const MOST_LETTERS = 8;
  * @param {Theme} theme
  */
 function imageOfRaster(raster, size, stretch, theme) {
+  const known = IMAGES.get(raster);
+  if (known?.theme === theme) return known.image;
   const image = document.createElement("canvas");
+  IMAGES.set(raster, { theme, image });
   image.width = size;
   image.height = size;
   const pen = image.getContext("2d");
@@ -54,6 +65,40 @@ function imageOfRaster(raster, size, stretch, theme) {
   return image;
 }
 
+/**
+ * Where the disc lies on its canvas, in CSS pixels.
+ * @param {number} width
+ * @param {number} height
+ * @param {Picture} picture
+ */
+function layOutDisc(width, height, picture) {
+  const edge = Math.max(...picture.rings.map((ring) => ring.radius), 0.5);
+  const unit = Math.max(1, Math.min(width, height) / 2 - DISC_MARGIN) / edge;
+  return { middle: width / 2, centre: height / 2, unit, edge };
+}
+
+/**
+ * The electrode nearest to a point of the canvas, or -1 when none is within reach.
+ * @param {HTMLCanvasElement} canvas
+ * @param {Picture} picture
+ * @param {number} x CSS pixels from the canvas's corner
+ * @param {number} y
+ * @param {number} reach
+ */
+export function electrodeOnDisc(canvas, picture, x, y, reach) {
+  const { middle, centre, unit } = layOutDisc(canvas.clientWidth, canvas.clientHeight, picture);
+  let best = -1;
+  let nearest = reach;
+  picture.electrodes.forEach((electrode, at) => {
+    const distance = Math.hypot(middle + unit * electrode.x - x, centre - unit * electrode.y - y);
+    if (distance <= nearest) {
+      best = at;
+      nearest = distance;
+    }
+  });
+  return best;
+}
+
 /** @param {CanvasRenderingContext2D} pen @param {Float32Array} points @param {boolean} closed */
 function tracePoints(pen, points, closed) {
   pen.beginPath();
@@ -71,14 +116,13 @@ export function paintDisc(canvas, content, around) {
   if (opened === null) return;
   const { pen, width, height } = opened;
   const { picture, role } = content;
-  const edge = Math.max(...picture.rings.map((ring) => ring.radius), 0.5);
-  const unit = Math.max(1, Math.min(width, height) / 2 - MARGIN) / edge;
+  const place = layOutDisc(width, height, picture);
   const stretch = role === "residual" ? picture.stretch : 1;
-  const pixel = 1 / unit;
+  const pixel = 1 / place.unit;
 
   pen.save();
-  pen.translate(width / 2, height / 2);
-  pen.scale(unit, unit);
+  pen.translate(place.middle, place.centre);
+  pen.scale(place.unit, place.unit);
 
   pen.save();
   tracePoints(pen, picture.outline, true);
@@ -99,7 +143,7 @@ export function paintDisc(canvas, content, around) {
   pen.lineWidth = pixel;
   pen.strokeStyle = around.ink;
   for (const ring of picture.rings) {
-    pen.globalAlpha = ring.radius === edge ? 0.45 : 0.13;
+    pen.globalAlpha = ring.radius === place.edge ? 0.45 : 0.13;
     pen.beginPath();
     pen.arc(0, 0, ring.radius, 0, 2 * Math.PI);
     pen.stroke();
@@ -107,111 +151,51 @@ export function paintDisc(canvas, content, around) {
   pen.globalAlpha = 0.3;
   tracePoints(pen, picture.outline, true);
   pen.stroke();
-  pen.globalAlpha = 1;
-  paintElectrodes(pen, picture, pixel, around);
-  if (content.dipole && picture.dipole !== null) paintDipole(pen, picture.dipole, pixel, around);
   pen.restore();
 
-  paintLetters(pen, width / 2, height / 2, unit, edge, content, around);
+  paintMarks(pen, width, place, content, around);
 }
 
 /**
+ * Electrodes, the dipole, the labels of the largest and smallest value, and the signs around the disc.
  * @param {CanvasRenderingContext2D} pen
- * @param {Picture} picture
- * @param {number} pixel
- * @param {Surroundings} around
- */
-function paintElectrodes(pen, picture, pixel, around) {
-  pen.fillStyle = around.ink;
-  pen.strokeStyle = around.ink;
-  pen.lineWidth = pixel;
-  for (const electrode of picture.electrodes) {
-    pen.beginPath();
-    pen.arc(electrode.x, -electrode.y, (electrode.used ? 1.3 : 2.2) * pixel, 0, 2 * Math.PI);
-    if (electrode.used) pen.fill();
-    else pen.stroke();
-  }
-}
-
-/**
- * An axis, not an arrow: a component's sign is arbitrary.
- * @param {CanvasRenderingContext2D} pen
- * @param {NonNullable<Picture["dipole"]>} dipole
- * @param {number} pixel
- * @param {Surroundings} around
- */
-function paintDipole(pen, dipole, pixel, around) {
-  const half = 20 * pixel;
-  pen.lineCap = "round";
-  for (const [colour, halo] of /** @type {const} */ ([
-    [around.paper, 1.5],
-    [around.ink, 0],
-  ])) {
-    pen.strokeStyle = colour;
-    pen.fillStyle = colour;
-    pen.lineWidth = (2 + 2 * halo) * pixel;
-    pen.beginPath();
-    pen.moveTo(dipole.x - half * dipole.dx, -dipole.y + half * dipole.dy);
-    pen.lineTo(dipole.x + half * dipole.dx, -dipole.y - half * dipole.dy);
-    pen.stroke();
-    pen.beginPath();
-    pen.arc(dipole.x, -dipole.y, (4 + halo) * pixel, 0, 2 * Math.PI);
-    pen.fill();
-  }
-}
-
-/**
- * Text with a halo of paper, readable on any value.
- * @param {CanvasRenderingContext2D} pen
- * @param {string} text
- * @param {number} x
- * @param {number} y
- * @param {Surroundings} around
- */
-function writeHaloed(pen, text, x, y, around) {
-  pen.lineWidth = 3;
-  pen.lineJoin = "round";
-  pen.strokeStyle = around.paper;
-  pen.strokeText(text, x, y);
-  pen.fillStyle = around.ink;
-  pen.fillText(text, x, y);
-}
-
-/** A label that leaves room for the letters around the disc. @param {string} label */
-function shortLabel(label) {
-  const letters = [...harmless(label)];
-  return letters.length > MOST_LETTERS ? `${letters.slice(0, MOST_LETTERS - 1).join("")}…` : letters.join("");
-}
-
-/**
- * Labels of the largest and smallest value, and the signs around the disc.
- * @param {CanvasRenderingContext2D} pen
- * @param {number} middle of the canvas, across
- * @param {number} centre of the canvas, down
- * @param {number} unit
- * @param {number} edge
+ * @param {number} width
+ * @param {ReturnType<typeof layOutDisc>} place
  * @param {DiscContent} content
  * @param {Surroundings} around
  */
-function paintLetters(pen, middle, centre, unit, edge, content, around) {
-  const { words, picture, role } = content;
-  pen.font = `11px ${around.font}`;
+function paintMarks(pen, width, { middle, centre, unit, edge }, content, around) {
+  const { words, picture, role, pointed } = content;
+  const extremes = picture.extremes[role];
+  const dipole = content.dipole ? picture.dipole : null;
+  const labelled = new Set([extremes.max, extremes.min]);
+  picture.electrodes.forEach(({ x, y, used }, at) => {
+    const radius = labelled.has(at) ? 2.5 : 1.3;
+    markElectrode(pen, middle + unit * x, centre - unit * y, { used, radius }, around);
+  });
+  if (dipole !== null) {
+    const { axis, dipole: inHead } = content.figure;
+    const moment = { dx: HALF_LINE * dipole.dx, dy: -HALF_LINE * dipole.dy, towards: inHead.direction[2], axis };
+    markDipole(pen, middle + unit * dipole.x, centre - unit * dipole.y, moment, around);
+  }
+
+  pen.font = letterFont(around);
   pen.textAlign = "center";
   pen.textBaseline = "middle";
-  for (const [key, sign] of /** @type {const} */ ([
-    ["max", "+"],
-    ["min", "\u2212"],
+  for (const [at, sign] of /** @type {const} */ ([
+    [extremes.max, "+"],
+    [extremes.min, "\u2212"],
   ])) {
-    const electrode = picture.electrodes[picture.extremes[role][key]];
+    const electrode = picture.electrodes[at];
     if (electrode === undefined) continue;
     // The label keeps out of the way of the dipole and inside the disc, and leaves the middle free.
-    const dipole = content.dipole ? picture.dipole : null;
     const above = electrode.y >= (dipole?.y ?? 0);
     const upwards = Math.hypot(electrode.x, electrode.y) > 0.8 * edge ? electrode.y < 0 : above;
-    const distance = dipole === null ? LABEL_DISTANCE : LABEL_DISTANCE + 4;
+    const distance = EXTREME_DISTANCE + (dipole === null ? 0 : 4) + (at === pointed ? 3 : 0);
     const y = centre - unit * electrode.y + (upwards ? -distance : distance);
-    writeHaloed(pen, `${sign}\u2009${shortLabel(electrode.label)}`, middle + unit * electrode.x, y, around);
+    writeHaloed(pen, `${sign}\u2009${shortLabel(electrode.label)}`, middle + unit * electrode.x, y, width, around);
   }
+
   const reach = unit * edge;
   pen.strokeStyle = around.ink;
   pen.lineWidth = 1.5;
@@ -227,5 +211,11 @@ function paintLetters(pen, middle, centre, unit, edge, content, around) {
   if (content.stretched !== "") {
     pen.textAlign = "right";
     pen.fillText(content.stretched, middle + reach, centre - reach + 2);
+    pen.textAlign = "center";
   }
+
+  const shown = picture.electrodes[pointed];
+  if (shown === undefined) return;
+  const label = labelled.has(pointed) ? "" : shown.label;
+  markPointed(pen, middle + unit * shown.x, centre - unit * shown.y, label, width, around);
 }

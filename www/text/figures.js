@@ -1,7 +1,7 @@
 /** The few numbers the page writes by itself; all others come as text from the engine. */
 
 const MINUS = "\u2212";
-const NO_BREAK = "\u00a0";
+export const NO_BREAK = "\u00a0";
 
 /** For the eye: true minus signs, and no line break between a number and its unit. @param {string} text */
 export function typeset(text) {

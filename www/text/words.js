@@ -1,5 +1,7 @@
 /** Every sentence of the page, by code. */
 
+import { NO_BREAK } from "./figures.js";
+
 /** @type {Record<string, string>} */
 const WORDS = {
   title: "Inward",
@@ -77,8 +79,46 @@ const WORDS = {
   "sign.arbitrary": "A component’s sign is arbitrary, so the dipole has an axis and no direction until you declare the polarity.",
   "sign.declared": "The sign as shown is declared to be the true one, for every map of the table.",
   "sign.turned": "The sign of this map is turned; turn it again for the sign of the table.",
+  "map.back": "back",
   "scale.shared": "One scale for all three",
   "scale.lines": "Lines: solid positive, dashed negative",
+
+  "electrode.hint": [
+    "Point at an electrode, or go from one to the next with the arrow keys, to read its values.",
+    "A click or Space leaves it out or takes it back.",
+  ].join(" "),
+  "electrode.map": "Map with electrodes",
+  "electrode.share": "of what is left over",
+  "electrode.part": "share",
+  "electrode.out": "left out",
+  "electrode.list": "Electrodes one by one",
+  "electrode.values": "Values at the electrodes",
+  "electrode.use": [
+    "Those without a tick are left out of the fit; their values are shown for comparison.",
+    "Share: an electrode’s part of the left-over power. In the list, arrow keys go from one to the next.",
+  ].join(" "),
+  "electrode.order": "Sort by",
+  "electrode.order.misfit": "misfit",
+  "electrode.order.label": "label",
+  "electrode.order.table": "table order",
+  "electrode.label": "electrode",
+  "electrode.back": "Take all back",
+  "electrode.restore": "Back to the answer shown",
+
+  where: "Where the equivalent dipole lies",
+  "where.axis": "Drawn as an axis: a component’s sign is arbitrary.",
+  "where.arrow": "The arrow runs from the negative to the positive pole.",
+  "where.lines": "Circles are the shells of the model; the dotted line runs from the dipole straight out to the scalp.",
+  "where.turn": "Drag, or use the arrow keys",
+  "view.above": "seen from above",
+  "view.behind": "seen from behind",
+  "view.left": "seen from the left",
+  "view.turned": "Head to be turned",
+  "turn.left": "Turn left",
+  "turn.right": "Turn right",
+  "turn.up": "Tilt up",
+  "turn.down": "Tilt down",
+  "turn.back": "Back to start",
 
   numbers: "Numbers",
   "numbers.quantity": "Quantity",
@@ -190,6 +230,69 @@ export function scaleText(stretch) {
   return `${shared}. ${word("scale.lines")}.`;
 }
 
+/** A unit to stand at every value: a symbol; words would be noise there. @param {string} unit */
+export function symbolOf(unit) {
+  return unit.includes(" ") ? "" : unit;
+}
+
+/**
+ * The three values at an electrode, and its part of what is left over.
+ * @param {SheetElectrode} electrode
+ * @param {string} unit
+ */
+export function electrodeParts({ used, measured, projected, residual, share }, unit) {
+  /** @param {string} role @param {string} value */
+  const part = (role, value) => `${word(`map.${role}`)} ${value}${NO_BREAK}${symbolOf(unit)}`.trim();
+  return [
+    part("measured", measured),
+    part("projected", projected),
+    part("residual", residual),
+    used ? `${share} % ${word("electrode.share")}` : word("electrode.out"),
+  ];
+}
+
+/** @param {SheetElectrode} electrode @param {string} unit */
+export function electrodeText(electrode, unit) {
+  return `${electrode.label}: ${electrodeParts(electrode, unit).join(", ")}`;
+}
+
+/** @param {number} out @param {number} all */
+export function leftOutText(out, all) {
+  return out === 0 ? `All ${all} are used` : `${all - out} of ${all} are used`;
+}
+
+/** What became of an electrode. @param {SheetElectrode} electrode @param {SheetElectrode[]} electrodes */
+export function usedText({ label, used }, electrodes) {
+  const out = electrodes.filter((electrode) => !electrode.used).length;
+  return `${label} ${used ? "taken back" : "left out"}. ${leftOutText(out, electrodes.length)}.`;
+}
+
+/** What lies in each quarter of a turn: straight ahead, and to either side of it. */
+const QUARTERS = [
+  { straight: "behind", less: "right of behind", more: "left of behind" },
+  { straight: "the left", less: "behind the left", more: "before the left" },
+  { straight: "the front", less: "left of the front", more: "right of the front" },
+  { straight: "the right", less: "before the right", more: "behind the right" },
+];
+
+/**
+ * From where the head is seen.
+ * @param {number} turn degrees from behind by the left
+ * @param {number} tilt degrees upwards
+ */
+export function standpointText(turn, tilt) {
+  const [round, up] = [Math.round(turn) % 360, Math.round(tilt)];
+  if (Math.abs(up) === 90) {
+    const side = up > 0 ? "above" : "below";
+    return `seen from ${side}${round === 0 ? "" : `, turned by ${round}°`}`;
+  }
+  const quarter = Math.round(round / 90);
+  const beside = round - 90 * quarter;
+  const { straight, less, more } = QUARTERS[quarter % 4];
+  const level = beside === 0 ? straight : `${Math.abs(beside)}° ${beside < 0 ? less : more}`;
+  return `seen from ${level}${up === 0 ? "" : `, ${Math.abs(up)}° ${up > 0 ? "above" : "below"}`}`;
+}
+
 /** Writes the page's own sentences where the template names their codes. @param {ParentNode} root */
 export function writeWords(root) {
   for (const element of root.querySelectorAll("[data-text]")) {
@@ -197,5 +300,8 @@ export function writeWords(root) {
   }
   for (const element of root.querySelectorAll("[data-label]")) {
     element.setAttribute("aria-label", word(element.getAttribute("data-label") ?? ""));
+  }
+  for (const element of root.querySelectorAll("[data-description]")) {
+    element.setAttribute("aria-roledescription", word(element.getAttribute("data-description") ?? ""));
   }
 }
