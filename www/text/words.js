@@ -90,6 +90,7 @@ const WORDS = {
   "electrode.map": "Map with electrodes",
   "electrode.share": "of what is left over",
   "electrode.part": "share",
+  "electrode.no-value": "no value in this map",
   "electrode.out": "left out",
   "electrode.list": "Electrodes one by one",
   "electrode.values": "Values at the electrodes",
@@ -243,6 +244,7 @@ export function symbolOf(unit) {
 export function electrodeParts({ used, measured, projected, residual, share }, unit) {
   /** @param {string} role @param {string} value */
   const part = (role, value) => `${word(`map.${role}`)} ${value}${NO_BREAK}${symbolOf(unit)}`.trim();
+  if (measured === "") return [word("electrode.no-value"), part("projected", projected), word("electrode.out")];
   return [
     part("measured", measured),
     part("projected", projected),
