@@ -107,7 +107,7 @@ const WORDS = {
   "electrode.restore": "Back to the answer shown",
 
   where: "Where the equivalent dipole lies",
-  "where.axis": "Drawn as an axis: a component’s sign is arbitrary.",
+  "where.axis": "The dipole is drawn as an axis, without direction.",
   "where.arrow": "The arrow runs from the negative to the positive pole.",
   "where.lines": "Circles are the shells of the model; the dotted line runs from the dipole straight out to the scalp.",
   "where.turn": "Drag, or use the arrow keys",
