@@ -1,6 +1,7 @@
 /** The foot of the page: which program this is, and the licences of what is built in. */
 
 import { programText } from "../text/faults.js";
+import { unpacked } from "../text/packed.js";
 import { need } from "./element.js";
 
 /** @import { Session } from "../session/session.js" */
@@ -14,8 +15,8 @@ export function showColophon(session) {
     },
   );
   const notices = need("notices", HTMLDetailsElement);
-  notices.addEventListener("toggle", () => {
-    const carried = document.getElementById("notices-text");
-    need("notices-shown", HTMLElement).textContent = carried?.textContent?.trim() ?? "";
+  notices.addEventListener("toggle", async () => {
+    const carried = need("notices-text", HTMLScriptElement).text;
+    need("notices-shown", HTMLElement).textContent = await unpacked(carried.trim()).text();
   });
 }

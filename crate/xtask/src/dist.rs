@@ -33,14 +33,15 @@ pub fn build(workspace: &Workspace) -> Result<Dist> {
     let www = workspace.root.join("www");
     let modules = Modules::read(&www).context("in www")?;
     let carried = BASE64_STANDARD.encode(gzip(&compiled.wasm)?);
-    let script = page_script(&modules.join("main.js")?);
-    let worker = worker_script(&modules.join("engine/worker.js")?, &compiled.glue);
+    let script = page_script(&modules.join("main.js")?)?;
+    let worker = worker_script(&modules.join("engine/worker.js")?, &compiled.glue)?;
+    let notices = BASE64_STANDARD.encode(gzip(notices(workspace)?.as_bytes())?);
     let parts = Parts {
         style: &styles(&www.join("style"))?,
         script: &script,
         worker: &worker,
         wasm: &carried,
-        notices: &notices(workspace)?,
+        notices: &notices,
         examples: &examples(&workspace.root.join("example_maps"))?,
     };
     let page = page(&read(&www.join("index.html"))?, &parts)?;

@@ -1,6 +1,8 @@
 //! The engine as a module for scripts and other pages, and the glue both it and the worker carry.
 
 use crate::bundle::Joined;
+use crate::lexer::terse;
+use anyhow::Context;
 use flate2::{Compression, GzBuilder};
 use std::io::{Result, Write};
 
@@ -10,13 +12,13 @@ fn wasm_glue(glue: &str) -> String {
 }
 
 /// The page's script: classic, since a module script cannot run from a file.
-pub fn page_script(joined: &Joined) -> String {
-    format!("(() => {{\n\"use strict\";\n{}}})();", joined.code)
+pub fn page_script(joined: &Joined) -> anyhow::Result<String> {
+    terse(&format!("(() => {{\n\"use strict\";\n{}}})();", joined.code)).context("page script")
 }
 
 /// The worker's script: classic for the same reason.
-pub fn worker_script(joined: &Joined, glue: &str) -> String {
-    format!("(() => {{\n\"use strict\";\n{}{}}})();", wasm_glue(glue), joined.code)
+pub fn worker_script(joined: &Joined, glue: &str) -> anyhow::Result<String> {
+    terse(&format!("(() => {{\n\"use strict\";\n{}{}}})();", wasm_glue(glue), joined.code)).context("worker script")
 }
 
 /// `inward.mjs`: the entry's own exports, with the engine inside.

@@ -56,6 +56,24 @@ pub fn tokens(script: &str) -> Result<Vec<Token<'_>>> {
     }
 }
 
+/// The script without comments and indentation. A gap between tokens stays a gap, and one with a line's end stays one: that
+/// may end a statement.
+pub fn terse(script: &str) -> Result<String> {
+    let mut terse = String::with_capacity(script.len());
+    let mut end = 0;
+    for token in tokens(script)? {
+        let gap = &script[end..token.start];
+        if gap.contains('\n') {
+            terse.push('\n');
+        } else if !gap.is_empty() {
+            terse.push(' ');
+        }
+        terse.push_str(token.text);
+        end = token.end();
+    }
+    Ok(terse)
+}
+
 struct Lexer<'a> {
     script: &'a str,
     at: usize,
@@ -230,6 +248,12 @@ mod tests {
     #[test]
     fn templates_hold_expressions() {
         assert_eq!(texts("`a${ {b: `$${c}`} }\\`$d`"), ["`a${", "{", "b", ":", "`$${", "c", "}`", "}", "}\\`$d`"]);
+    }
+
+    #[test]
+    fn terse_scripts_keep_gaps_strings_and_ends_of_lines() {
+        let script = "// first\nlet a = /* b */ 1 // c\n  let  d = `// ${ a /* e\n */ }\n  `;\n\n";
+        assert_eq!(terse(script).unwrap(), "\nlet a = 1\nlet d = `// ${ a\n}\n  `;");
     }
 
     #[test]

@@ -14,7 +14,7 @@ pub struct Parts<'a> {
     pub worker: &'a str,
     /// The compressed module in base64, as text.
     pub wasm: &'a str,
-    /// The licence notices, as text.
+    /// The licence notices, compressed, in base64.
     pub notices: &'a str,
     /// The invented maps, as JSON.
     pub examples: &'a str,
