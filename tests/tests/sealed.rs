@@ -163,5 +163,5 @@ fn the_bundle_holds_no_way_around_the_policy() {
 fn the_page_is_small_enough_to_mail() {
     let size = std::fs::metadata(dist_file("inward.html")).unwrap().len();
     println!("inward.html: {size} bytes");
-    assert!(size <= 900_000, "{size} bytes");
+    assert!(size <= 600_000, "{size} bytes");
 }

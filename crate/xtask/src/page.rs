@@ -21,7 +21,7 @@ pub struct Parts<'a> {
 }
 
 /// The largest page, in bytes, so that it stays a quick download and a small attachment.
-pub const LIMIT: usize = 900_000;
+pub const LIMIT: usize = 600_000;
 
 /// Puts the parts where the template's comments ask for them, each alone on its line.
 pub fn page(template: &str, parts: &Parts) -> Result<String> {
