@@ -7,6 +7,7 @@ export const NO_BREAK = "\u00a0";
 export function typeset(text) {
   return text
     .replace(/(^|[\s(])-(?=\d)/g, `$1${MINUS}`)
+    .replace(/(\d) : (?=\d)/g, `$1${NO_BREAK}:${NO_BREAK}`)
     .replace(/(\d) (?=%|mm\b|cm\b|S\/m|nAm|µV|V\b)/g, `$1${NO_BREAK}`);
 }
 

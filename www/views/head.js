@@ -3,7 +3,7 @@
  * entry that is not complete is not sent; one that the engine refuses leaves the answer as it is.
  */
 
-import { enteredNumber, enteredText } from "../text/figures.js";
+import { enteredNumber, enteredText, typeset } from "../text/figures.js";
 import { shellLabel, word } from "../text/words.js";
 import { make, need } from "./element.js";
 import { writeRows } from "./rows.js";
@@ -64,7 +64,7 @@ function showHeadChoices(session) {
   const choiceElement = (name, title, source) => {
     const label = make("label", "", { class: "head-choice" });
     const words = make("span", "");
-    words.append(make("span", title), make("span", source, { class: "small" }));
+    words.append(make("span", typeset(title)), make("span", source, { class: "small" }));
     label.append(make("input", "", { type: "radio", name: "head", value: name }), words);
     return label;
   };
@@ -261,7 +261,7 @@ export function showHead(session) {
   session.watch(
     (state) => state.answer?.sheet?.head,
     (head) => {
-      need("head-title", HTMLElement).textContent = head?.title ?? "";
+      need("head-title", HTMLElement).textContent = typeset(head?.title ?? "");
       need("head-source", HTMLElement).textContent = head?.source ?? "";
       writeRows(body, head?.rows ?? []);
     },
