@@ -74,6 +74,16 @@ fn native_and_wasm_give_equal_bits() {
             json!({ "mapUnit": "V", "exclude": ["Cz", "T7"], "flip": [1, 2], "activationSd": [null, 0.3] }),
         ),
     ];
+    // A head that lies obliquely in its axes, and its mirror image.
+    let set = Electrodes::set(32);
+    let turn = draw.rotation();
+    let oblique: Vec<Vec3> = set.directions.iter().map(|&e| turn(e * 88.0) + draw.direction() * 3.0).collect();
+    let mirrored: Vec<Vec3> = oblique.iter().map(|p| Vec3::new(p[0], -p[1], p[2])).collect();
+    let maps = Mixture::many(&series, &set.directions, 0.85, 20, &mut draw);
+    let columns: Vec<(&str, &[f64])> = maps.iter().map(|map| ("m", map.values.as_slice())).collect();
+    cases.push(case(Some(&set.table(&oblique)), &set.maps(&columns), json!({})));
+    cases.push(case(Some(&set.table(&mirrored)), &set.maps(&columns), json!({ "mirror": true })));
+    cases.push(case(Some(&set.table(&oblique)), &set.maps(&columns), json!({ "axes": "front-left-up" })));
     for (count, unit) in [(19, 1.0), (32, 0.1), (71, 0.001), (128, 1.0), (256, 1.0)] {
         let set = Electrodes::set(count);
         let maps = Mixture::many(&series, &set.directions, 0.85, 60, &mut draw);

@@ -305,7 +305,7 @@ fn derivations_and_mixed_references_are_refused_unless_left_out() {
 }
 
 #[test]
-fn numbered_electrodes_of_a_series_are_no_ears_and_no_eyes() {
+fn numbered_electrodes_of_a_series_are_no_sites_no_ears_and_no_eyes() {
     let letter = |letter: char| {
         let mut set = Electrodes::spread(32, -0.2);
         set.labels = (1..=32).map(|k| format!("{letter}{k}")).collect();
@@ -314,8 +314,20 @@ fn numbered_electrodes_of_a_series_are_no_ears_and_no_eyes() {
         let report = run(Some(&set.table(&positions)), &set.maps(&[("noise", &values)]), Settings::default());
         assert_eq!(report.electrodes.len(), 32, "{letter}");
         assert_eq!(note(&report, "not-scalp"), None, "{letter}");
+        assert!(note(&report, "axes-assumed").is_some(), "{letter}: names of a series tell no axes");
+        // Nor do they stand at standard places.
+        let alone = try_run(None, &set.maps(&[("noise", &values)]), Settings::default());
+        assert_eq!(alone.unwrap_err().finding().code.as_str(), "labels-unmatched", "{letter}");
     };
-    ['A', 'E', 'M'].into_iter().for_each(letter);
+    ['A', 'E', 'M', 'C', 'F', 'P'].into_iter().for_each(letter);
+    // Without a series, they are what they are called.
+    let ears = run(
+        None,
+        &(maps() + "A1\t1\t2\t3\t4\t5\t6\nE1\t1\t2\t3\t4\t5\t6\nE2-M1\t1\t2\t3\t4\t5\t6\n"),
+        Settings::default(),
+    );
+    assert!(note(&ears, "positions-approximate").unwrap().contains("A1"));
+    assert!(note(&ears, "not-scalp").unwrap().contains("E1, E2-M1"));
 }
 
 #[test]

@@ -113,6 +113,9 @@ const REFERENCES: [&str; 24] = [
     "g2",
 ];
 
+/// Ears and mastoids, the reference of many a recording.
+const EARS: [&str; 4] = ["a1", "a2", "m1", "m2"];
+
 /// Words after a name that tell its unit.
 const UNITS: [&str; 5] = ["uv", "µv", "μv", "mv", "v"];
 
@@ -233,7 +236,7 @@ impl Reading {
         let mut core = words.as_slice();
         while let [before @ .., last] = core
             && !before.is_empty()
-            && is(last, &REFERENCES)
+            && (is(last, &REFERENCES) || is(last, &EARS))
         {
             core = before;
         }
@@ -374,6 +377,12 @@ mod tests {
         ] {
             assert_eq!(read(text).kind, Kind::Other(other), "{text}");
         }
+        assert_eq!(
+            (read("E1-M2").key.as_str(), read("E1-M2").kind),
+            ("e1", Kind::Unknown),
+            "an eye, or one of a series"
+        );
+        assert_eq!(read("LOC-A2").kind, Kind::Other(Other::Eye));
         for (text, landmark) in
             [("NAS", Landmark::Nasion), ("LPA", Landmark::Left), ("rpa", Landmark::Right), ("Inion", Landmark::Inion)]
         {

@@ -1,7 +1,8 @@
 //! Unit, centre and axes of the table of electrodes.
 
+use super::labels::readings;
 use super::{FAR, Placed, Wishes, farthest};
-use crate::electrode::{Electrode, Grade, Kind, Landmark, Reading};
+use crate::electrode::{Electrode, Grade, Kind, Label, Landmark, Reading};
 use crate::finding::{Choice, Code, Error, Finding, Origin, Place};
 use crate::head::{Axes, AxesName, HEAD_RADII_MM, Landmarks, LengthUnit, Orientation, Sphere};
 use crate::math::Vec3;
@@ -119,8 +120,9 @@ pub(super) fn find_axes(
         Frame::Positions { millimetres, .. } => p * *millimetres,
         Frame::Directions(_) => sphere.centre + p * sphere.radius,
     };
+    let labels: Vec<&Label> = table.iter().map(|e| &e.label).collect();
     let read: Vec<(&Electrode, Reading, Vec3)> =
-        table.iter().filter_map(|e| Some((e, Reading::of(&e.label), to_mm(e.position?)))).collect();
+        table.iter().zip(readings(&labels)).filter_map(|(e, reading)| Some((e, reading, to_mm(e.position?)))).collect();
     let named: Vec<(&Electrode, (Vec3, Vec3))> = read
         .iter()
         .filter_map(|(electrode, reading, position)| match reading.kind {

@@ -40,23 +40,31 @@ struct Names<'a> {
 
 impl<'a> Names<'a> {
     fn new(labels: Vec<&'a Label>) -> Self {
-        let mut readings: Vec<Reading> = labels.iter().map(|label| Reading::of(label)).collect();
-        // Where A3 or E17 is an electrode, A1 is no ear and E1 no eye.
-        let beyond = |letter: char| {
-            let number = |reading: &Reading| reading.key.strip_prefix(letter).and_then(|rest| rest.parse::<u32>().ok());
-            readings.iter().filter_map(number).any(|number| number > 2)
-        };
-        let [ears, mastoids, eyes] = ['a', 'm', 'e'].map(beyond);
-        for (reading, label) in readings.iter_mut().zip(&labels) {
-            match reading.key.as_str() {
-                "a1" | "a2" if ears => forget(reading, label),
-                "m1" | "m2" if mastoids => forget(reading, label),
-                "e1" | "e2" if !eyes => reading.kind = Kind::Other(Other::Eye),
-                _ => {}
-            }
-        }
+        let readings = readings(&labels);
         Self { labels, readings }
     }
+}
+
+/// What labels of one table say. Where they number through a letter they say nothing: beside A3 or C17, A1 is no ear and C3
+/// no site, beside E3, E1 is no eye.
+pub(super) fn readings(labels: &[&Label]) -> Vec<Reading> {
+    let mut readings: Vec<Reading> = labels.iter().map(|label| Reading::of(label)).collect();
+    let numbered = |reading: &Reading| -> Option<(char, u32)> {
+        let letter = reading.key.chars().next().filter(char::is_ascii_alphabetic)?;
+        Some((letter, reading.key.get(1..)?.parse().ok()?))
+    };
+    // Sites with one letter reach number 12 in some caps, ears, mastoids and eyes number 2.
+    let beyond = |(letter, number): &(char, u32)| *number > if "ame".contains(*letter) { 2 } else { 12 };
+    let series: BTreeSet<char> =
+        readings.iter().filter_map(numbered).filter(beyond).map(|(letter, _)| letter).collect();
+    for (reading, label) in readings.iter_mut().zip(labels) {
+        match numbered(reading) {
+            Some((letter, _)) if series.contains(&letter) => forget(reading, label),
+            Some(('e', 1 | 2)) => reading.kind = Kind::Other(Other::Eye),
+            _ => {}
+        }
+    }
+    readings
 }
 
 /// A name that is nothing known after all.
