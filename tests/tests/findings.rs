@@ -259,6 +259,15 @@ fn errors_name_input_line_column_label_and_map() {
         (place.input, place.line, place.column, place.label.as_deref()),
         (Some("electrodes"), Some(6), Some(2), Some("Fpz"))
     );
+    let place = error(Some(&moved(|k, p| if k == 7 { p * 0.2 } else { p })), &m, plain()).place.unwrap();
+    assert_eq!((place.input, place.line, place.label.as_deref()), (Some("electrodes"), Some(9), Some("AF8")));
+    // The second of two labels for one electrode is the one that is too many.
+    for (from, to, named) in [("F7", "F7-T7", "F7-T7"), ("AF8", "T3", "T7")] {
+        let changed = m.replacen(&format!("\n{from}\t"), &format!("\n{to}\t"), 1);
+        let line = changed.lines().position(|line| line.starts_with(&format!("{named}\t"))).unwrap() + 1;
+        let place = error(Some(&e), &changed, plain()).place.unwrap();
+        assert_eq!((place.input, place.line, place.label.as_deref()), (Some("maps"), Some(line), Some(named)));
+    }
     // Lines are those of the text, empty ones and remarks counted.
     let spaced = format!("# measured on Tuesday\n\n{}", with_line(&m, 4, |line| line.replacen("4.58", "x", 1)));
     assert_eq!(error(Some(&e), &spaced, plain()).place.unwrap().line, Some(6));

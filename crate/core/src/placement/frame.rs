@@ -44,6 +44,8 @@ pub struct AxesFound {
     pub name: Option<AxesName>,
     /// Angle in degrees between the axes and what told them.
     pub tilt_degrees: f64,
+    /// Rms angle in degrees between named electrodes and their standard places, where these told the axes.
+    pub misfit_degrees: Option<f64>,
     /// Whether what told the axes has left and right exchanged against the positions.
     pub mirrored: bool,
 }
@@ -51,7 +53,14 @@ pub struct AxesFound {
 impl AxesFound {
     pub(super) fn standard() -> Self {
         let name = Some(AxesName::CANONICAL);
-        Self { axes: Axes::CANONICAL, evidence: Evidence::Standard, name, tilt_degrees: 0.0, mirrored: false }
+        Self {
+            axes: Axes::CANONICAL,
+            evidence: Evidence::Standard,
+            name,
+            tilt_degrees: 0.0,
+            misfit_degrees: None,
+            mirrored: false,
+        }
     }
 }
 
@@ -64,9 +73,11 @@ pub(super) fn recognise_unit(
 ) -> Result<Frame, Error> {
     let points: Vec<Vec3> = electrodes.iter().map(|e| e.position_mm).collect();
     let unrecognised = || {
-        let label = farthest(electrodes);
-        let place = Place { label: Some(label.clone()), ..Place::input("electrodes") };
-        Finding::new(Code::UnitsUnrecognised).at(place).with("label", label)
+        let finding = Finding::new(Code::UnitsUnrecognised);
+        match farthest(electrodes) {
+            Some(one) => finding.at(one.place()).with("label", one.label.as_str()),
+            None => finding.at(Place::input("electrodes")),
+        }
     };
     let sphere = Sphere::fit(&points).ok_or_else(unrecognised)?.sphere;
     let mut choose = |unit: Option<LengthUnit>| {
@@ -170,6 +181,7 @@ pub(super) fn find_axes(
         Evidence::Setting => "setting",
         Evidence::Standard | Evidence::Nothing => "nothing",
     };
+    let misfit_degrees = (evidence == Evidence::Labels).then_some(orientation.misfit_degrees);
     let upright = AxesName::all().take(4).chain(name).map(|name| name.to_string());
     let mut options: Vec<String> = Vec::new();
     upright.for_each(|option| {
@@ -191,6 +203,7 @@ pub(super) fn find_axes(
             .with("axes", value)
             .with("by", by)
             .with("labels", from)
+            .with("misfit_degrees", orientation.misfit_degrees)
             .with("tilt_degrees", orientation.tilt_degrees),
     });
     if let Some(labels) = by_labels.filter(|labels| labels.axes.angle_to(&orientation.axes) > CONTRADICTED_DEGREES) {
@@ -206,7 +219,7 @@ pub(super) fn find_axes(
         }
     }
     let axes = if wishes.mirror == Some(true) { orientation.axes.mirrored() } else { orientation.axes };
-    AxesFound { axes, evidence, name, tilt_degrees: orientation.tilt_degrees, mirrored }
+    AxesFound { axes, evidence, name, tilt_degrees: orientation.tilt_degrees, misfit_degrees, mirrored }
 }
 
 /// The landmarks of a file of coordinates, else those in the table.

@@ -106,15 +106,15 @@ pub(super) fn match_labels(
     if maps.values.iter().all(|value| value.is_nan()) {
         return Err(Finding::new(Code::MapsNone).at(Place::input("maps")).into());
     }
-    found.reference = reference(&mut names, &rows, wishes)?;
+    found.reference = reference(&mut names, &rows, maps, wishes)?;
 
     let mut placed: Vec<Placed> = Vec::new();
     for row in rows {
         let (Some(label), Some(reading)) = (maps.labels.get(row), names.readings.get(row)) else { continue };
         let electrode = match table {
-            Some(_) => {
-                index.find(label, reading, &known)?.and_then(|i| Some((electrodes.get(i)?, known.readings.get(i)?)))
-            }
+            Some(_) => index
+                .find(label, reading, &known, line(maps, row))?
+                .and_then(|i| Some((electrodes.get(i)?, known.readings.get(i)?))),
             None => None,
         };
         let (shown, position) = match (electrode, table) {
@@ -137,7 +137,8 @@ pub(super) fn match_labels(
         }
         let mut keys = vec![shown.key(), label.key()];
         keys.extend(loose_keys(reading));
-        placed.push(Placed { label: shown, position_mm, row, used: true, keys });
+        let line = electrode.map(|(electrode, _)| electrode.line);
+        placed.push(Placed { label: shown, position_mm, row, used: true, line, keys });
     }
     refuse_duplicates(&placed, maps, &names)?;
     if placed.is_empty() {
@@ -215,7 +216,7 @@ impl Index {
     }
 
     /// The electrode that a label of the maps stands for.
-    fn find(&self, label: &Label, reading: &Reading, names: &Names) -> Result<Option<usize>, Error> {
+    fn find(&self, label: &Label, reading: &Reading, names: &Names, line: usize) -> Result<Option<usize>, Error> {
         let keys = [Some(label.key()), Some(reading.key.clone()), site_key(reading)];
         for (level, key) in self.levels.iter().zip(keys) {
             match key.and_then(|key| level.get(&key)).map(Vec::as_slice) {
@@ -224,7 +225,7 @@ impl Index {
                 Some(several) => {
                     let labels: Vec<String> =
                         several.iter().filter_map(|&i| names.labels.get(i)).map(|label| label.to_string()).collect();
-                    let place = Place { label: Some(label.to_string()), ..Place::input("maps") };
+                    let place = Place { label: Some(label.to_string()), ..Place::line("maps", line) };
                     return Err(Finding::new(Code::LabelAmbiguous)
                         .at(place)
                         .with("label", label.as_str())
@@ -238,7 +239,7 @@ impl Index {
 }
 
 /// The reference that all labels name, as in `Fp1-Ref`. Labels that are left out have no say.
-fn reference(names: &mut Names, rows: &[usize], wishes: &Wishes) -> Result<Option<String>, Error> {
+fn reference(names: &mut Names, rows: &[usize], maps: &Maps, wishes: &Wishes) -> Result<Option<String>, Error> {
     let left_out: Vec<Reading> = wishes.exclude.iter().chain(&wishes.interpolated).map(Reading::of).collect();
     let counts = |row: &usize| {
         let (Some(label), Some(reading)) = (names.labels.get(*row), names.readings.get(*row)) else { return false };
@@ -269,10 +270,14 @@ fn reference(names: &mut Names, rows: &[usize], wishes: &Wishes) -> Result<Optio
         rows.iter().filter_map(|&row| names.labels.get(row)).map(|l| l.to_string()).collect()
     };
     let bipolar: Vec<usize> = rows.iter().copied().filter(|&row| matches!(of(row), Some(Second::Site(_)))).collect();
-    let at = |labels: &[String]| Place { label: labels.first().cloned(), ..Place::input("maps") };
+    let refused = |code: Code, rows: &[usize]| {
+        let labels = labels(rows);
+        let first = rows.first().map_or(1, |&row| line(maps, row));
+        let place = Place { label: labels.first().cloned(), ..Place::line("maps", first) };
+        Error::from(Finding::new(code).at(place).with("labels", labels))
+    };
     if !bipolar.is_empty() {
-        let labels = labels(&bipolar);
-        return Err(Finding::new(Code::LabelBipolar).at(at(&labels)).with("labels", labels).into());
+        return Err(refused(Code::LabelBipolar, &bipolar));
     }
     let named: Vec<&Vec<usize>> = seconds
         .values()
@@ -280,8 +285,7 @@ fn reference(names: &mut Names, rows: &[usize], wishes: &Wishes) -> Result<Optio
         .collect();
     if named.len() > 1 {
         let examples: Vec<usize> = named.iter().filter_map(|rows| rows.first().copied()).collect();
-        let labels = labels(&examples);
-        return Err(Finding::new(Code::ReferenceMixed).at(at(&labels)).with("labels", labels).into());
+        return Err(refused(Code::ReferenceMixed, &examples));
     }
     let reference = named.first().and_then(|rows| rows.first()).and_then(|&row| text(row));
     // What follows a name and is no reference belongs to the name.
@@ -305,17 +309,21 @@ fn refuse_duplicates(placed: &[Placed], maps: &Maps, names: &Names) -> Result<()
                 continue;
             }
             let label = |row: usize| maps.labels.get(row).map(Label::to_string).unwrap_or_default();
-            let line = |row: usize| maps.lines.get(row).copied().unwrap_or(1);
-            let place = Place { label: Some(label(electrode.row)), ..Place::line("maps", line(electrode.row)) };
+            let place = Place { label: Some(label(electrode.row)), ..Place::line("maps", line(maps, electrode.row)) };
             return Err(Finding::new(Code::LabelDuplicate)
                 .at(place)
                 .with("label", label(electrode.row))
                 .with("other", label(first))
-                .with("first_line", line(first))
+                .with("first_line", line(maps, first))
                 .into());
         }
     }
     Ok(())
+}
+
+/// The line of a row of the maps.
+fn line(maps: &Maps, row: usize) -> usize {
+    maps.lines.get(row).copied().unwrap_or(1)
 }
 
 fn unmatched(maps: &Maps, electrodes: &[Electrode]) -> Error {

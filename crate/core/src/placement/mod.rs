@@ -65,6 +65,8 @@ pub struct Placed {
     pub row: usize,
     /// Whether the fits use it; false when left out by hand.
     pub used: bool,
+    /// Line in the table of electrodes.
+    line: Option<usize>,
     /// What it may be called, the labels of both tables first.
     keys: Vec<String>,
 }
@@ -98,6 +100,13 @@ pub struct Wishes {
     pub centre_mm: Option<Vec3>,
     /// Scalp radius.
     pub radius_mm: Option<f64>,
+}
+
+impl Placed {
+    /// Where its position stands.
+    fn place(&self) -> Place {
+        Place { line: self.line, label: Some(self.label.to_string()), ..Place::input("electrodes") }
+    }
 }
 
 impl Placement {
@@ -190,11 +199,10 @@ pub fn place(table: Option<&[Electrode]>, maps: &Maps, wishes: &Wishes) -> Resul
 /// How far the electrodes lie off the sphere that they are projected on.
 fn note_deviations(electrodes: &[Placed], sphere: &SphereFit, notes: &mut Vec<Finding>) {
     let Some((worst, off)) = most_off(electrodes, sphere.sphere) else { return };
-    let place = || Place { label: Some(worst.label.to_string()), ..Place::input("electrodes") };
     if off > SMALL_DEVIATION_MM {
         notes.push(
             Finding::new(Code::ElectrodesProjected)
-                .at(place())
+                .at(worst.place())
                 .with("max_mm", off)
                 .with("label", worst.label.as_str())
                 .with("rms_mm", sphere.rms),
@@ -203,7 +211,7 @@ fn note_deviations(electrodes: &[Placed], sphere: &SphereFit, notes: &mut Vec<Fi
     if off > LARGE_DEVIATION_MM {
         let far = electrodes.iter().filter(|e| e.used && deviation(e, sphere.sphere) > LARGE_DEVIATION_MM);
         let labels: Vec<String> = far.map(|e| e.label.to_string()).collect();
-        notes.push(Finding::new(Code::SphereDeviation).at(place()).with("max_mm", off).with("labels", labels));
+        notes.push(Finding::new(Code::SphereDeviation).at(worst.place()).with("max_mm", off).with("labels", labels));
     }
 }
 
@@ -253,7 +261,7 @@ fn refuse_flat(points: &[Vec3]) -> Result<(), Error> {
 }
 
 /// The electrode whose distance from the median position differs most from the median distance.
-fn farthest(electrodes: &[Placed]) -> String {
+fn farthest(electrodes: &[Placed]) -> Option<&Placed> {
     let median = |mut values: Vec<f64>| {
         values.sort_by(f64::total_cmp);
         values.get(values.len() / 2).copied().unwrap_or(0.0)
@@ -262,7 +270,7 @@ fn farthest(electrodes: &[Placed]) -> String {
     let distance = |e: &Placed| (e.position_mm - middle).norm();
     let usual = median(electrodes.iter().map(distance).collect());
     let off = |e: &&Placed| (distance(e) - usual).abs();
-    electrodes.iter().max_by(|a, b| off(a).total_cmp(&off(b))).map(|e| e.label.to_string()).unwrap_or_default()
+    electrodes.iter().max_by(|a, b| off(a).total_cmp(&off(b)))
 }
 
 fn refuse_coincident(electrodes: &[Placed]) -> Result<(), Error> {
@@ -270,7 +278,7 @@ fn refuse_coincident(electrodes: &[Placed]) -> Result<(), Error> {
     for (index, a) in used.iter().enumerate() {
         if let Some(b) = used[..index].iter().find(|b| (a.position_mm - b.position_mm).norm() < COINCIDENT_MM) {
             return Err(Finding::new(Code::ElectrodesCoincident)
-                .at(Place { label: Some(a.label.to_string()), ..Place::input("electrodes") })
+                .at(a.place())
                 .with("label", a.label.as_str())
                 .with("other", b.label.as_str())
                 .into());
@@ -314,7 +322,7 @@ fn refuse_far(electrodes: &[Placed], sphere: Sphere, wishes: &Wishes) -> Result<
         return Err(finding.with("label", worst.label.as_str()).into());
     }
     Err(Finding::new(Code::ElectrodeOff)
-        .at(Place { label: Some(worst.label.to_string()), ..Place::input("electrodes") })
+        .at(worst.place())
         .with("label", worst.label.as_str())
         .with("off_mm", off)
         .into())

@@ -181,7 +181,11 @@ pub fn message(finding: &Finding) -> String {
             };
             let by = match value("by").as_str() {
                 "landmarks" => "as the points at ears and nose tell".to_owned(),
-                "labels" => format!("as these labels tell: {}", value("labels")),
+                "labels" => format!(
+                    "as these labels tell, which lie {}° (rms) from their standard places: {}",
+                    number(finding, "misfit_degrees").map(|misfit| significant(misfit, 2)).unwrap_or_default(),
+                    value("labels")
+                ),
                 _ => "as set".into(),
             };
             match (tilt, value("axes").as_str()) {
