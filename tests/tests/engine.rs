@@ -14,6 +14,14 @@ fn scripts_find_what_they_rely_on() {
     assert!(passed.is_some_and(|count| count >= 15), "{printed}");
 }
 
+#[test]
+fn the_page_replaces_workers_that_held_large_files() {
+    let printed = Node::with_engine()
+        .run("js/pool.test.mjs", &["--test-reporter=spec"], "")
+        .unwrap_or_else(|why| panic!("{why}"));
+    assert!(printed.contains("pass 4") && printed.contains("fail 0"), "{printed}");
+}
+
 /// A request as JSON for Node and its report made natively.
 struct Case {
     request: Value,

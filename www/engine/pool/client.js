@@ -1,7 +1,9 @@
 /**
  * The page's side of the worker. Every message has an id; whoever waits under that id gets the answer, and an
  * answer nobody waits for is dropped. Giving up terminates the worker and starts a fresh one from the same
- * compiled module. A trap kills only the worker: the next message goes to a fresh one.
+ * compiled module. A trap kills only the worker: the next message goes to a fresh one. The memory of an engine never
+ * shrinks: a large file is recognised by a worker of its own, and a worker that held one is replaced once the file is given up
+ * and nothing is waited for.
  *
  * @typedef {{ task: WorkerTask, resolve: (value: any) => void, reject: (fault: Fault) => void,
  *             progress: ((step: FitProgress) => void) | undefined }} Waiting
@@ -12,6 +14,15 @@
 /** @param {string} code @param {string} [details] @returns {Fault} */
 function clientFault(code, details) {
   return { code, message: "", where: null, hint: "", details };
+}
+
+/** Bytes from which on a file is large. */
+const LARGE_BYTES = 16 * 2 ** 20;
+
+/** Whether a content, or something in a request, is that large. @param {unknown} given @returns {boolean} */
+function isLarge(given) {
+  if (typeof given === "string" || given instanceof Uint8Array) return given.length > LARGE_BYTES;
+  return typeof given === "object" && given !== null && Object.values(given).some(isLarge);
 }
 
 /**
@@ -33,11 +44,18 @@ export function makeClient(module, startWorker) {
   const bases = new Map();
   /** Keys whose request the present worker holds. @type {Set<number>} */
   const told = new Set();
+  /** Whether the present worker held a large file that was given up. */
+  let worn = false;
 
   function stop() {
     worker?.terminate();
     worker = null;
+    worn = false;
     told.clear();
+  }
+
+  function stopIfWorn() {
+    if (worn && waiting.size === 0) stop();
   }
 
   /** @param {Worker} from @param {WorkerReply} reply */
@@ -47,6 +65,7 @@ export function makeClient(module, startWorker) {
     if (from !== worker || one === undefined) return;
     if ("progress" in reply) return one.progress?.(reply.progress);
     waiting.delete(reply.id);
+    stopIfWorn();
     if ("value" in reply) return one.resolve(reply.value);
     if (reply.fault.code === "engine-trap") restart();
     one.reject(reply.fault);
@@ -112,10 +131,39 @@ export function makeClient(module, startWorker) {
    * @returns {Promise<any>}
    */
   function ask(task, progress) {
+    if ("content" in task && isLarge(task.content)) return askApart(task);
     return new Promise((resolve, reject) => {
       const id = nextId++;
       waiting.set(id, { task, resolve, reject, progress });
       post(id, task);
+    });
+  }
+
+  /** Asks a worker of its own, which ends with its answer. @param {WorkerTask} task @returns {Promise<any>} */
+  function askApart(task) {
+    return new Promise((resolve, reject) => {
+      const apart = startWorker();
+      /** @param {string} details */
+      const failed = (details) => {
+        apart.terminate();
+        reject(clientFault("worker-lost", details));
+      };
+      apart.addEventListener("message", (event) => {
+        apart.terminate();
+        if ("value" in event.data) resolve(event.data.value);
+        else reject(event.data.fault);
+      });
+      apart.addEventListener("error", (event) => {
+        event.preventDefault();
+        failed(event.message ?? "");
+      });
+      apart.addEventListener("messageerror", () => failed("a message could not be read"));
+      try {
+        apart.postMessage({ module });
+        apart.postMessage({ ...task, id: 0 });
+      } catch (error) {
+        failed(String(error));
+      }
     });
   }
 
@@ -137,7 +185,12 @@ export function makeClient(module, startWorker) {
     /** @param {number} key */
     forget(key) {
       bases.delete(key);
-      if (requests.delete(key) && worker !== null && told.delete(key)) ask({ kind: "close", key }).catch(() => {});
+      const request = requests.get(key);
+      if (!requests.delete(key) || worker === null || !told.delete(key)) return;
+      // Another study may hold the same tables, with other settings.
+      worn ||= isLarge(request) && ![...requests.values()].some(isLarge);
+      if (worn && waiting.size === 0) stop();
+      else ask({ kind: "close", key }).catch(() => {});
     },
 
     /** Gives up everything asked about one study; the rest is asked again. @param {number} key */
