@@ -182,6 +182,8 @@ function paintMarks(pen, width, { middle, centre, unit, edge }, content, around)
   pen.font = letterFont(around);
   pen.textAlign = "center";
   pen.textBaseline = "middle";
+  /** @type {{ x: number, y: number }[]} */
+  const taken = [];
   for (const [at, sign] of /** @type {const} */ ([
     [extremes.max, "+"],
     [extremes.min, "\u2212"],
@@ -192,8 +194,9 @@ function paintMarks(pen, width, { middle, centre, unit, edge }, content, around)
     const above = electrode.y >= (dipole?.y ?? 0);
     const upwards = Math.hypot(electrode.x, electrode.y) > 0.8 * edge ? electrode.y < 0 : above;
     const distance = EXTREME_DISTANCE + (dipole === null ? 0 : 4) + (at === pointed ? 3 : 0);
-    const y = centre - unit * electrode.y + (upwards ? -distance : distance);
-    writeHaloed(pen, `${sign}\u2009${shortLabel(electrode.label)}`, middle + unit * electrode.x, y, width, around);
+    const label = { x: middle + unit * electrode.x, y: centre - unit * electrode.y + (upwards ? -distance : distance) };
+    writeHaloed(pen, `${sign}\u2009${shortLabel(electrode.label)}`, label.x, label.y, width, around);
+    taken.push(label);
   }
 
   const reach = unit * edge;
@@ -217,5 +220,5 @@ function paintMarks(pen, width, { middle, centre, unit, edge }, content, around)
   const shown = picture.electrodes[pointed];
   if (shown === undefined) return;
   const label = labelled.has(pointed) ? "" : shown.label;
-  markPointed(pen, middle + unit * shown.x, centre - unit * shown.y, label, width, around);
+  markPointed(pen, middle + unit * shown.x, centre - unit * shown.y, label, width, around, taken);
 }

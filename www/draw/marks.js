@@ -90,8 +90,9 @@ export function markElectrode(pen, x, y, { used, radius }, around) {
  * @param {string} label or empty
  * @param {number} width of the canvas
  * @param {Surroundings} around
+ * @param {{ x: number, y: number }[]} [taken] middles of labels that stand already
  */
-export function markPointed(pen, x, y, label, width, around) {
+export function markPointed(pen, x, y, label, width, around, taken = []) {
   for (const [colour, line] of /** @type {const} */ ([
     [around.paper, 5],
     [around.ink, 2],
@@ -103,8 +104,10 @@ export function markPointed(pen, x, y, label, width, around) {
   }
   if (label === "") return;
   pen.font = `600 ${letterFont(around)}`;
-  const y2 = y > 2 * LABEL_DISTANCE ? y - LABEL_DISTANCE - 3 : y + LABEL_DISTANCE + 3;
-  writeHaloed(pen, shortLabel(label), x, y2, width, around);
+  const above = y - LABEL_DISTANCE - 3;
+  const free = above > 8 && taken.every((one) => Math.abs(one.y - above) > 12 || Math.abs(one.x - x) > 44);
+  const beside = free ? above : y + LABEL_DISTANCE + 3;
+  writeHaloed(pen, shortLabel(label), x, beside, width, around);
   pen.font = letterFont(around);
 }
 
