@@ -197,7 +197,7 @@ pub fn message(finding: &Finding) -> String {
             "The labels contradict these axes: by their names the electrodes lie as if the axes were {}.",
             axes_words(&value("axes"))
         ),
-        Code::Mirrored => "Left and right are exchanged: by their labels the electrodes are a mirror image of a head. Either the labels or an axis of the positions is wrong; positions were kept as they are written.".into(),
+        Code::Mirrored => "By their labels the electrodes are the mirror image of a head, left and right exchanged. Either the labels or an axis of the positions is wrong; positions were kept as they are written.".into(),
         Code::LabelsRenamed => format!("Labels of the maps read as electrodes: {}.", value("labels")),
         Code::NotScalp => format!("Left out, because they are not on the scalp: {}.", value("labels")),
         Code::ReferenceNamed => format!("The labels name a common reference, {}.", value("reference")),
@@ -224,7 +224,7 @@ pub fn message(finding: &Finding) -> String {
             }
         ),
         Code::ElectrodesProjected => format!(
-            "Electrodes are projected onto the sphere along its radius; they lie {} mm off it (rms), {} farthest, {} mm.",
+            "Electrodes are projected onto the sphere along its radius; they lie {} mm off it (rms), {} farthest, by {} mm.",
             number(finding, "rms_mm").map(tenths).unwrap_or_default(),
             value("label"),
             number(finding, "max_mm").map(tenths).unwrap_or_default()
