@@ -3,39 +3,44 @@
 use crate::workspace::read;
 use anyhow::{Context, Result, bail};
 use serde_json::{Value, json};
+use std::collections::BTreeMap;
 use std::path::Path;
 
-/// The list of examples with every named file replaced by its name and content; one example a line.
+/// `{ files, list }`: the list of examples and, by name, the content of every file they name; one file or example a line.
 pub fn examples(folder: &Path) -> Result<String> {
     let list: Value = serde_json::from_str(&read(&folder.join("examples.json"))?).context("in examples.json")?;
     let list = list.as_array().context("examples.json is no list")?;
+    let mut files = BTreeMap::new();
     let mut lines = Vec::new();
     for example in list {
         let text = |key: &str| {
             example[key].as_str().with_context(|| format!("an example in examples.json without {key}: {example}"))
         };
-        let file = |key: &str| -> Result<Value> {
+        for key in ["maps", "electrodes"] {
             if example[key].is_null() && key == "electrodes" {
-                return Ok(Value::Null);
+                continue;
             }
             let name = text(key)?;
             if Path::new(name).components().count() != 1 {
                 bail!("examples.json names {name}, which is not a file beside it");
             }
-            Ok(json!({ "name": name, "content": read(&folder.join(name))? }))
-        };
+            files.insert(name, read(&folder.join(name))?);
+        }
         let carried = json!({
             "name": text("name")?,
             "title": text("title")?,
             "line": text("line")?,
             "unit": example["unit"],
-            "maps": file("maps")?,
-            "electrodes": file("electrodes")?,
+            "maps": example["maps"],
+            "electrodes": example["electrodes"],
         });
-        // No text of a table may end the element that carries it.
-        lines.push(carried.to_string().replace('<', "\\u003c"));
+        lines.push(carried.to_string());
     }
-    Ok(format!("[\n{}\n]", lines.join(",\n")))
+    let files: Vec<String> =
+        files.iter().map(|(name, content)| format!("{}: {}", json!(name), json!(content))).collect();
+    let carried = format!("{{ \"files\": {{\n{}\n}}, \"list\": [\n{}\n] }}", files.join(",\n"), lines.join(",\n"));
+    // No text of a table may end the element that carries it.
+    Ok(carried.replace('<', "\\u003c"))
 }
 
 #[cfg(test)]
@@ -59,8 +64,9 @@ mod tests {
         let text = carried(list).unwrap();
         assert!(!text.contains("</"));
         let list: Value = serde_json::from_str(&text).unwrap();
-        assert_eq!(list[0]["maps"], json!({ "name": "a.tsv", "content": "Cz\t1\n</script>\n" }));
-        assert_eq!(list[0]["electrodes"], Value::Null);
+        assert_eq!(list["list"][0]["maps"], "a.tsv");
+        assert_eq!(list["files"], json!({ "a.tsv": "Cz\t1\n</script>\n" }));
+        assert_eq!(list["list"][0]["electrodes"], Value::Null);
     }
 
     #[test]
