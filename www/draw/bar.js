@@ -1,7 +1,7 @@
 /** The colour bar: the scale from one end to the other, with a tick in each contour line's style at its level. */
 
 import { openCanvas } from "./canvas.js";
-import { colourOfShare, cssColour } from "./scale.js";
+import { colourOfShare, cssColour, lineColour } from "./scale.js";
 
 /** @import { Surroundings } from "./canvas.js" */
 
@@ -18,11 +18,10 @@ export function paintBar(canvas, picture, around) {
     pen.fillStyle = cssColour(colourOfShare((2 * (x + 0.5)) / width - 1, around.theme));
     pen.fillRect(x, 0, 1.5, height);
   }
-  const shift = around.theme === "light" ? -0.2 : 0.16;
   for (const level of picture.levels) {
     const share = level / picture.limit;
     const x = ((share + 1) / 2) * width;
-    pen.strokeStyle = cssColour(colourOfShare(share, around.theme, shift));
+    pen.strokeStyle = lineColour(share, around.theme);
     pen.lineWidth = 1.1;
     pen.setLineDash(level < 0 ? [3, 2] : []);
     pen.beginPath();

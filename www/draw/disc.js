@@ -5,7 +5,7 @@
 
 import { openCanvas } from "./canvas.js";
 import { letterFont, markDipole, markElectrode, markPointed, shortLabel, writeHaloed } from "./marks.js";
-import { colourOfShare, colourTable, cssColour } from "./scale.js";
+import { colourTable, lineColour } from "./scale.js";
 
 /** @import { Surroundings } from "./canvas.js" */
 /** @import { Theme } from "./scale.js" */
@@ -131,8 +131,7 @@ export function paintDisc(canvas, content, around) {
   pen.imageSmoothingQuality = "high";
   pen.drawImage(imageOfRaster(picture[role], picture.size, stretch, around.theme), -1, -1, 2, 2);
   for (const line of picture.contours[role]) {
-    const shift = around.theme === "light" ? -0.2 : 0.16;
-    pen.strokeStyle = cssColour(colourOfShare((line.level / picture.limit) * stretch, around.theme, shift));
+    pen.strokeStyle = lineColour((line.level / picture.limit) * stretch, around.theme);
     pen.lineWidth = 1.1 * pixel;
     pen.setLineDash(line.level < 0 ? [4 * pixel, 3 * pixel] : []);
     tracePoints(pen, line.points, false);

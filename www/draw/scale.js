@@ -12,6 +12,8 @@ const MIDDLE_LIGHTNESS = { light: 0.97, dark: 0.27 };
 const END_LIGHTNESS = { light: 0.47, dark: 0.8 };
 /** The most that sRGB reaches at the ends in both hues. */
 const END_CHROMA = { light: 0.083, dark: 0.098 };
+/** Lightness of a line, less that of the values it runs through. */
+const LINE_SHIFT = { light: -0.2, dark: 0.16 };
 
 /** @typedef {"light" | "dark"} Theme */
 
@@ -69,6 +71,11 @@ export function colourOfShare(share, theme, shift) {
 /** @param {[number, number, number]} colour */
 export function cssColour([red, green, blue]) {
   return `rgb(${red} ${green} ${blue})`;
+}
+
+/** Of a contour line, which must be seen on its own level. @param {number} share @param {Theme} theme */
+export function lineColour(share, theme) {
+  return cssColour(colourOfShare(share, theme, LINE_SHIFT[theme]));
 }
 
 /** Colours of equal steps over the whole scale, packed for an image. @param {Theme} theme @param {number} steps */

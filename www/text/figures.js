@@ -3,10 +3,11 @@
 const MINUS = "\u2212";
 export const NO_BREAK = "\u00a0";
 
-/** For the eye: true minus signs, and no line break between a number and its unit. @param {string} text */
+/** For the eye: true minus signs and apostrophes, no line break between a number and its unit. @param {string} text */
 export function typeset(text) {
   return text
-    .replace(/(^|[\s(])-(?=\d)/g, `$1${MINUS}`)
+    .replace(/(^|[\s(]|\de)-(?=\d)/g, `$1${MINUS}`)
+    .replace(/(?<=\p{Ll})'(?=s\b)|(?<=s)'(?=\s)/gu, "\u2019")
     .replace(/(\d) : (?=\d)/g, `$1${NO_BREAK}:${NO_BREAK}`)
     .replace(/(\d) (?=%|mm\b|cm\b|S\/m|nAm|µV|V\b)/g, `$1${NO_BREAK}`);
 }
@@ -14,7 +15,7 @@ export function typeset(text) {
 /** A fraction as a percentage, with the digits that the engine gives it. @param {number} fraction */
 export function percentText(fraction) {
   const percent = 100 * fraction;
-  const digits = percent >= 1 || percent === 0 ? percent.toFixed(1) : Number(percent.toPrecision(2)).toString();
+  const digits = percent >= 1 || percent === 0 ? percent.toFixed(1) : percent.toPrecision(2);
   return `${percent > 0 && percent < 0.001 ? "under 0.001" : digits}${NO_BREAK}%`;
 }
 

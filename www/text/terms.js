@@ -101,7 +101,7 @@ export const TERMS = [
   {
     code: "moment",
     words: ["moment", "moments"],
-    line: "Direction and strength of the dipole’s current, in nAm when the map’s unit is known.",
+    line: "Direction and strength of the dipole’s current, in nanoampere metres (nAm) when the map’s unit is known.",
   },
   {
     code: "radial-share",

@@ -30,6 +30,12 @@ export function showChoice(session) {
   /** What is listed: the answer's key, and the maps from one index up to another. */
   let listed = { key: 0, from: 0, to: 0, fitted: 0 };
 
+  /** A step that leads nowhere hands the focus on. @param {HTMLButtonElement} step @param {boolean} over */
+  function end(step, over) {
+    if (over && document.activeElement === step) list.focus();
+    step.disabled = over;
+  }
+
   list.addEventListener("change", () => session.choose(Number(list.value)));
   previous.addEventListener("click", () => session.choose((session.read().answer?.chosen ?? 0) - 1));
   next.addEventListener("click", () => session.choose((session.read().answer?.chosen ?? 0) + 1));
@@ -63,8 +69,8 @@ export function showChoice(session) {
       need("choice", HTMLElement).hidden = answer === null || answer.count < 2;
       if (answer === null) return;
       listMaps(answer);
-      previous.disabled = answer.chosen === 0;
-      next.disabled = answer.chosen >= answer.maps.length - 1;
+      end(previous, answer.chosen === 0);
+      end(next, answer.chosen >= answer.maps.length - 1);
       number.hidden = answer.count <= BLOCK;
       number.max = String(answer.maps.length);
       if (document.activeElement !== number) number.value = String(answer.chosen + 1);

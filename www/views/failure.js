@@ -26,8 +26,9 @@ export function showFailure(session) {
   copy.addEventListener("click", async () => confirmOn(copy, await copyText(details.textContent ?? "")));
   const restore = need("failure-restore", HTMLButtonElement);
   restore.addEventListener("click", () => {
+    const near = panel.closest("details")?.querySelector("summary") ?? need("main", HTMLElement);
     session.restore();
-    need("main", HTMLElement).focus({ preventScroll: true });
+    near.focus({ preventScroll: true });
   });
   need("failure-dismiss", HTMLButtonElement).addEventListener("click", () => {
     session.dismiss();

@@ -16,7 +16,10 @@ const EDITED = "edited";
 function sameShells(left, right) {
   return (
     left.length === right.length &&
-    left.every((shell, at) => shell.ratio === right[at].ratio && shell.conductivity === right[at].conductivity)
+    left.every(({ tissue, ratio, conductivity }, at) => {
+      const other = right[at];
+      return tissue === other.tissue && ratio === other.ratio && conductivity === other.conductivity;
+    })
   );
 }
 
@@ -108,7 +111,7 @@ function showShells(session) {
   const take = () => {
     const rows = [...list.children];
     const shells = rows.map((row) => ({
-      tissue: fieldOf(row, "tissue").value.trim(),
+      tissue: fieldOf(row, "tissue").value.trim() || word("head.new"),
       ratio: numberOf(fieldOf(row, "ratio")),
       conductivity: numberOf(fieldOf(row, "conductivity")),
     }));
@@ -124,8 +127,7 @@ function showShells(session) {
     tellEntry(complete ? "" : word("head.shell-incomplete"));
     if (!complete) return;
     const held = session.read().settings.head?.shells ?? session.read().heads[0]?.shells ?? [];
-    const named = shells.every((shell, at) => shell.tissue === held[at]?.tissue);
-    if (!(named && sameShells(shells, held))) changeHead(session, { shells });
+    if (!sameShells(shells, held)) changeHead(session, { shells });
   };
 
   /** @param {ShellSpec | null} shell @param {number} number */
@@ -269,5 +271,4 @@ export function showHead(session) {
   showHeadChoices(session);
   showShells(session);
   showSphere(session);
-
 }

@@ -148,7 +148,7 @@ export function showMaps(session) {
     (sheet) => {
       if (!sheet) return;
       const { picture, alt, scale, electrodes } = sheet;
-      for (const { role, canvas } of discs) canvas.setAttribute("aria-label", alt[role]);
+      for (const { role, canvas } of discs) canvas.setAttribute("aria-label", typeset(alt[role]));
       need("scale-low", HTMLElement).textContent = `\u2212${scale.limit}`;
       need("scale-high", HTMLElement).textContent = `+${scale.limit} ${scale.unit}`;
       const stretched = picture.stretch === 1 ? "" : stretchText(picture.stretch);

@@ -1,6 +1,6 @@
 /** Rows of numbers: name, value with unit, a line on its meaning. */
 
-import { typeset } from "../text/figures.js";
+import { NO_BREAK, typeset } from "../text/figures.js";
 import { make } from "./element.js";
 
 /** Longer values take the place of their meaning, which then stands below. */
@@ -9,19 +9,12 @@ const ONE_LINE = 26;
 /** @param {SheetRow} row */
 function rowElement(row) {
   const element = make("tr", "", { "data-code": row.code });
-  element.append(make("th", row.label, { scope: "row" }));
-  if (row.value.length > ONE_LINE) {
-    const both = make("td", "", { class: "long", colspan: "2" });
-    both.append(
-      ...row.value.split("; ").map((part) => make("div", typeset(part))),
-      make("div", typeset(row.meaning), { class: "small" }),
-    );
-    element.append(both);
-  } else {
-    const value = make("td", typeset(row.value), { class: "value" });
-    if (row.unit !== "") value.append(make("span", `\u00a0${row.unit}`, { class: "unit-of" }));
-    element.append(value, make("td", typeset(row.meaning), { class: "meaning small" }));
-  }
+  const long = row.value.length > ONE_LINE;
+  const value = make("td", typeset(row.value), long ? { class: "long", colspan: "2" } : { class: "value" });
+  if (row.unit !== "") value.append(make("span", `${NO_BREAK}${row.unit}`, { class: "unit-of" }));
+  if (long) value.append(make("div", typeset(row.meaning), { class: "small" }));
+  element.append(make("th", typeset(row.label), { scope: "row" }), value);
+  if (!long) element.append(make("td", typeset(row.meaning), { class: "meaning small" }));
   return element;
 }
 

@@ -35,29 +35,29 @@ export function showStatus(session) {
   let slow = false;
   let timer = 0;
   const show = () => {
-      const state = session.read();
-      const busy = state.phase === "busy" || state.progress !== null;
-      if (!busy) {
-        clearTimeout(timer);
-        timer = 0;
-        slow = false;
-      } else if (timer === 0) {
-        timer = setTimeout(() => {
-          slow = true;
-          show();
-        }, QUICK_MS);
-      }
-      const working = busy && (slow || state.answer === null);
-      if (busy && !working) return;
-      const text = statusText(state);
-      // Counts change many times a second; a screen reader hears of the beginning and the end.
-      status.setAttribute("aria-live", state.progress === null ? "polite" : "off");
-      if (status.textContent !== text) status.textContent = text;
-      status.classList.toggle("unseen", state.phase === "answered" && !working && !state.stopped);
-      cancel.hidden = !working;
-      progress.hidden = !working;
-      if (state.progress === null) progress.removeAttribute("value");
-      else progress.value = state.progress.done / state.progress.total;
+    const state = session.read();
+    const busy = state.phase === "busy" || state.progress !== null;
+    if (!busy) {
+      clearTimeout(timer);
+      timer = 0;
+      slow = false;
+    } else if (timer === 0) {
+      timer = setTimeout(() => {
+        slow = true;
+        show();
+      }, QUICK_MS);
+    }
+    const working = busy && (slow || state.answer === null);
+    if (busy && !working) return;
+    const text = statusText(state);
+    // Counts change many times a second; a screen reader hears of the beginning and the end.
+    status.setAttribute("aria-live", state.progress === null ? "polite" : "off");
+    if (status.textContent !== text) status.textContent = text;
+    status.classList.toggle("unseen", state.phase === "answered" && !working && !state.stopped);
+    cancel.hidden = !working;
+    progress.hidden = !working;
+    if (state.progress === null) progress.removeAttribute("value");
+    else progress.value = state.progress.done / state.progress.total;
   };
   session.watch((state) => state, show);
 }

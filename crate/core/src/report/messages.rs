@@ -292,7 +292,7 @@ pub fn hint(code: Code) -> &'static str {
     match code {
         Code::SettingsUnknown => "Remove or correct the setting; the README lists all of them.",
         Code::HeadInvalid => {
-            "Give shells from the inside out with rising ratios, the last one 1, and conductivities in S/m; a radius in mm between 40 and 120."
+            "Give shells from the inside out with rising ratios, the last one 1, and conductivities in S/m; a radius in mm between 40 and 120. Centre and radius are fitted to the electrodes where they are left out."
         }
         Code::InputEmpty => "Give a table with a label and a value or a position in each line.",
         Code::InputTooLarge => "Split the table, or leave out columns that are not needed.",
