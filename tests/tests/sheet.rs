@@ -280,7 +280,8 @@ fn predictions_at_left_out_electrodes_are_those_of_an_independent_series() {
                 let (measured, predicted) = (made.values[k] - means.0, predicted[k] - means.1);
                 let off = (electrode.misfit - (measured - predicted).abs()).abs();
                 assert!(off < 1e-7 * limit, "{}, {}: off by {off:e}", made.kind, electrode.label);
-                let told: f64 = electrode.projected.parse().unwrap();
+                // Volts are written as microvolts.
+                let told = electrode.projected.parse::<f64>().unwrap() * factor;
                 assert!((told - predicted).abs() <= 0.005 * limit, "{electrode:?}: {predicted}");
                 checked += 1;
             }

@@ -55,7 +55,10 @@ pub(super) fn beside(value: f64, limit: f64) -> String {
         exponent if (-4..7).contains(&exponent) => {
             plain(format!("{value:.*}", usize::try_from(2 - exponent).unwrap_or(0)))
         }
-        _ => significant(value, 3),
+        exponent => match 3 + magnitude(value) - exponent {
+            digits @ 1.. => significant(value, digits as usize),
+            _ => "0".into(),
+        },
     }
 }
 
@@ -107,6 +110,7 @@ mod tests {
             [beside(0.0331, 0.4).as_str(), &beside(12.34, 12.34), &beside(-0.17, 12.34), &beside(-0.01, 12.34)]
         );
         assert_eq!((beside(1234.4, 5000.0).as_str(), beside(1e-6, 3e-6).as_str()), ("1234", "1.00e-6"));
+        assert_eq!((beside(-4.2e-8, 3e-6).as_str(), beside(4.2e-9, 3e-6).as_str()), ("-4e-8", "0"));
         assert_eq!(
             ["0.33", "0.004125", "25", "1.79", "0"],
             [0.33, 0.004125, 25.0, 1.79, 0.0].map(given).each_ref().map(String::as_str)

@@ -126,11 +126,12 @@ impl Sheet {
     pub fn new(map: &FittedMap, head: &HeadReport, sites: &[Site], unit: MapUnit) -> Self {
         let used: Vec<&Site> = sites.iter().filter(|site| site.used).collect();
         let dipole = &map.dipole;
+        let unit = Written::of(unit);
         Self {
             sentence: sentence(map, head),
             rows: rows(map, head, used.len(), sites.len()),
             head: head_sheet(head),
-            electrodes: electrodes(map, sites),
+            electrodes: electrodes(map, sites, unit),
             figure: Figure::new(dipole, head, sites),
             alt: Alternative {
                 measured: described("Measured map", &used, |site| site.measured, unit),
@@ -141,19 +142,22 @@ impl Sheet {
                 left: LEFT.words(dipole),
                 turned: TURNED.words(dipole),
             },
-            scale: Scale { limit: significant(map.scale_limit(), 2), unit: unit_name(unit) },
+            scale: Scale { limit: significant(unit.factor * map.scale_limit(), 2), unit: unit.name },
         }
     }
 }
 
-fn electrodes(map: &FittedMap, sites: &[Site]) -> Vec<SheetElectrode> {
+fn electrodes(map: &FittedMap, sites: &[Site], unit: Written) -> Vec<SheetElectrode> {
     let limit = map.scale_limit();
     // Scaled first: squares of very large or small values would leave the range of numbers.
     let power = |residual: f64| (residual / limit) * (residual / limit);
     let all: f64 = map.residual.iter().map(|r| power(*r)).sum();
     let electrode = |site: &Site| {
         let residual = site.residual();
-        let text = |value: f64| if value.is_nan() { String::new() } else { beside(value, limit) };
+        let text = |value: f64| match value.is_nan() {
+            true => String::new(),
+            false => beside(unit.factor * value, unit.factor * limit),
+        };
         SheetElectrode {
             label: site.label.to_owned(),
             used: site.used,
@@ -455,21 +459,32 @@ fn direction(vector: Vec3, arbitrary: bool) -> String {
     if arbitrary { format!("±({text})") } else { text }
 }
 
-fn described(what: &str, sites: &[&Site], value: fn(&Site) -> f64, unit: MapUnit) -> String {
-    let unit = unit_name(unit);
+fn described(what: &str, sites: &[&Site], value: fn(&Site) -> f64, unit: Written) -> String {
     let extreme = |sign: f64| {
         let best = sites.iter().reduce(|best, site| if sign * value(site) > sign * value(best) { site } else { best });
-        best.map(|site| format!("{} ({} {unit}, {})", site.label, significant(value(site), 3), region(site.direction)))
-            .unwrap_or_default()
+        best.map_or_else(String::new, |site| {
+            let size = significant(unit.factor * value(site), 3);
+            format!("{} ({size} {}, {})", site.label, unit.name, region(site.direction))
+        })
     };
     format!("{what}, seen from above: most positive at {}, most negative at {}.", extreme(1.0), extreme(-1.0))
 }
 
-fn unit_name(unit: MapUnit) -> &'static str {
-    match unit {
-        MapUnit::Microvolt => "µV",
-        MapUnit::Volt => "V",
-        MapUnit::Relative => "relative units",
+/// The unit in which values of a map are written, and what they are multiplied by for it.
+#[derive(Clone, Copy)]
+struct Written {
+    name: &'static str,
+    factor: f64,
+}
+
+impl Written {
+    /// Volts are written as microvolts, which need no powers of ten.
+    fn of(unit: MapUnit) -> Self {
+        match unit {
+            MapUnit::Microvolt => Self { name: "µV", factor: 1.0 },
+            MapUnit::Volt => Self { name: "µV", factor: 1e6 },
+            MapUnit::Relative => Self { name: "relative units", factor: 1.0 },
+        }
     }
 }
 
