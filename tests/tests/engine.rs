@@ -34,8 +34,12 @@ fn case(electrodes: Option<&str>, maps: &str, settings: Value) -> Case {
         request["electrodes"] = json!(electrodes);
     }
     let settings: Settings = serde_json::from_value(settings).unwrap();
-    let report =
-        analyse(&Request { electrodes: electrodes.map(str::as_bytes), maps: maps.as_bytes(), settings, build: None });
+    let report = analyse(&Request {
+        electrodes: electrodes.map(str::as_bytes),
+        maps: maps.as_bytes(),
+        settings,
+        ..Request::default()
+    });
     Case { request, native: serde_json::to_value(report.unwrap()).unwrap() }
 }
 

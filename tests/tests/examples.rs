@@ -12,7 +12,8 @@ fn run(electrodes: &str, maps: &str, exclude: &[&str]) -> Report {
         exclude: exclude.iter().map(|&label| label.to_owned()).collect(),
         ..Settings::default()
     };
-    analyse(&Request { electrodes: Some(electrodes.as_bytes()), maps: maps.as_bytes(), settings, build: None }).unwrap()
+    analyse(&Request { electrodes: Some(electrodes.as_bytes()), maps: maps.as_bytes(), settings, ..Request::default() })
+        .unwrap()
 }
 
 fn fitted(map: &MapReport) -> &FittedMap {

@@ -17,7 +17,7 @@ fn maps() -> String {
 }
 
 fn run(electrodes: Option<&[u8]>, maps: &[u8], settings: Settings) -> Result<Report, Error> {
-    analyse(&Request { electrodes, maps, settings, build: None })
+    analyse(&Request { electrodes, maps, settings, ..Request::default() })
 }
 
 /// The error of an input, in words.
@@ -214,7 +214,8 @@ fn errors() -> Vec<(&'static str, ErrorReport)> {
     all.push(("input-encoding", (&run(None, &bytes, plain()).unwrap_err()).into()));
     let utf16: Vec<u8> = std::iter::once(0xfeff).chain(m.encode_utf16()).flat_map(u16::to_le_bytes).collect();
     all.push(("input-encoding", (&run(None, &utf16, plain()).unwrap_err()).into()));
-    let study = Study::open(&Request { electrodes: None, maps: m.as_bytes(), settings: plain(), build: None }).unwrap();
+    let study = Study::open(&Request { electrodes: None, maps: m.as_bytes(), settings: plain(), ..Request::default() })
+        .unwrap();
     for (code, name) in [
         ("input-truncated", "cut.mat"),
         ("input-damaged", "version_9.npy"),

@@ -46,7 +46,8 @@ fn run(electrodes: &str, maps: &str) -> Report {
 }
 
 fn run_with(electrodes: &str, maps: &str, settings: Settings) -> Report {
-    let request = Request { electrodes: Some(electrodes.as_bytes()), maps: maps.as_bytes(), settings, build: None };
+    let request =
+        Request { electrodes: Some(electrodes.as_bytes()), maps: maps.as_bytes(), settings, ..Request::default() };
     analyse(&request).unwrap()
 }
 
@@ -181,8 +182,13 @@ fn the_case_of_labels_does_not_matter() {
     let report = run(&sample.table().to_uppercase().replace("LABEL\tX\tY\tZ", "Label\tX\tY\tZ"), &sample.maps());
     compare(&sample.report(), &report, Clone::clone, 1e-12);
     let alone = |maps: &str| {
-        analyse(&Request { electrodes: None, maps: maps.as_bytes(), settings: Settings::default(), build: None })
-            .unwrap()
+        analyse(&Request {
+            electrodes: None,
+            maps: maps.as_bytes(),
+            settings: Settings::default(),
+            ..Request::default()
+        })
+        .unwrap()
     };
     let lower: String = sample
         .maps()

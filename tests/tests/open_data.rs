@@ -23,8 +23,13 @@ fn open_data(name: &str) -> Option<String> {
 
 fn report(electrodes: Option<&str>, maps: &str, exclude: &[&str]) -> Report {
     let settings = Settings { exclude: exclude.iter().map(|&label| label.into()).collect(), ..Settings::default() };
-    analyse(&Request { electrodes: electrodes.map(str::as_bytes), maps: maps.as_bytes(), settings, build: None })
-        .unwrap()
+    analyse(&Request {
+        electrodes: electrodes.map(str::as_bytes),
+        maps: maps.as_bytes(),
+        settings,
+        ..Request::default()
+    })
+    .unwrap()
 }
 
 fn fitted(report: &Report) -> Vec<&FittedMap> {

@@ -1,7 +1,8 @@
 //! Tables are told apart by their content, labels find their standard places.
 use inward_core::Vec3;
 use inward_core::electrode::{Label, nearest_site, standard_position};
-use inward_core::read::{Kind, kind};
+use inward_core::kind;
+use inward_core::understand::Kind;
 use inward_tests::{Draw, Electrodes, Mixture, PlainSeries, data, example};
 
 fn headless(table: &str) -> String {

@@ -20,7 +20,7 @@ fn position_moment_and_residual_variance_agree_with_an_independent_fit() {
             electrodes: electrodes.map(str::as_bytes),
             maps: case["maps"].as_str().unwrap().as_bytes(),
             settings,
-            build: None,
+            ..Request::default()
         };
         let report = analyse(&request).unwrap();
         let name = case["name"].as_str().unwrap();

@@ -1,23 +1,26 @@
 //! The whole way of a table of maps in one call.
 
+mod tables;
+
 use crate::assess::{adjusted_residual_variance, degrees_of_freedom};
-use crate::electrode::{Electrode, Label, nearest_site};
+use crate::electrode::{Label, nearest_site};
 use crate::finding::{Code, Error, Finding, Place};
 use crate::fit::{BATCH, Fit, Fitter};
 use crate::forward::LeadField;
 use crate::head::{Shells, catalogued};
-use crate::map::{MapUnit, Maps, average_referenced, hints_at_laplacian};
+use crate::map::{MapUnit, average_referenced, hints_at_laplacian};
 use crate::math::{Vec3, mean};
 use crate::placement::{Placed, Placement, Wishes, place};
-use crate::read::{read_electrodes, read_maps};
+use crate::read::{Reading, read};
 use crate::report::{
-    Assessment, ElectrodeReport, EquivalentDipole, FittedMap, HeadReport, Input, MapReport, Note, Program, Report,
-    SearchReport, Settings, Sheet, Site,
+    Assessment, ChoiceReport, ElectrodeReport, EquivalentDipole, FittedMap, HeadReport, LabelsReport, MapReport, Note,
+    Program, Renamed, Report, SearchReport, Settings, Sheet, Site, UnderstoodReport,
 };
 use crate::scene::{Picture, Spline};
+use crate::understand::{ColumnsAre, Kind, kind_of};
 use core::ops::Range;
-use sha2::{Digest, Sha256};
 use std::sync::{Arc, OnceLock};
+use tables::Tables;
 
 /// Distance from the centre below which a position has no site above and no place seen from above.
 const CENTRE_MM: f64 = 5.0;
@@ -29,10 +32,18 @@ pub struct Request<'a> {
     pub electrodes: Option<&'a [u8]>,
     /// Content of a table of maps.
     pub maps: &'a [u8],
+    /// Files by name with their content, told apart by it, in place of electrodes and maps.
+    pub files: Vec<(&'a str, &'a [u8])>,
     /// Choices.
     pub settings: Settings,
     /// Short hash of the engine's sources, for the report.
     pub build: Option<&'static str>,
+}
+
+/// Whether the content of a file is a table of electrodes or of maps; what cannot be read is taken for maps, so that reading it says what is wrong.
+pub fn kind(bytes: &[u8]) -> Kind {
+    let files = read("", bytes, |_| Reading::default()).unwrap_or_default();
+    kind_of(files.iter().map(|(_, content)| content))
 }
 
 /// Reads, places, fits every map and reports.
@@ -64,66 +75,51 @@ pub struct Study {
     spline: OnceLock<Option<Spline>>,
 }
 
-/// What was read, whatever the settings.
-#[derive(Debug)]
-struct Tables {
-    inputs: Vec<Input>,
-    build: Option<&'static str>,
-    electrodes: Option<Vec<Electrode>>,
-    maps: Maps,
-    notes: Vec<Finding>,
-}
-
-impl Tables {
-    fn read(request: &Request) -> Result<Self, Error> {
-        let (maps, mut notes) = read_maps(request.maps)?;
-        let electrodes = match request.electrodes.map(read_electrodes).transpose()? {
-            Some((electrodes, more)) => {
-                notes.extend(more);
-                Some(electrodes)
-            }
-            None => None,
-        };
-        let inputs = request.electrodes.map(|bytes| ("electrodes", bytes)).into_iter().chain([("maps", request.maps)]);
-        let inputs = inputs.map(|(name, bytes)| Input { name, sha256: sha256(bytes) }).collect();
-        Ok(Self { inputs, build: request.build, electrodes, maps, notes })
-    }
-}
-
 impl Study {
     /// Reads the inputs, places the electrodes on the head and prepares the search.
     ///
     /// # Errors
-    /// Any of [`read_electrodes`], [`read_maps`], [`Settings::check`], [`Shells::new`] and [`place`].
+    /// Any of [`crate::read::read`], [`crate::understand::understand`], [`Settings::check`], [`Shells::new`] and [`place`].
     pub fn open(request: &Request) -> Result<Self, Error> {
         Self::prepared(Arc::new(Tables::read(request)?), request.settings.clone(), None)
     }
 
-    /// The same tables under other settings; nothing is read again, and the digits are those of a new study.
+    /// The same files under other settings: understood again only if these mean something for that, and the digits are
+    /// those of a new study.
     ///
     /// # Errors
-    /// Any of [`Settings::check`], [`Shells::new`] and [`place`].
+    /// Any of [`crate::understand::understand`], [`Settings::check`], [`Shells::new`] and [`place`].
     pub fn with(&self, settings: Settings) -> Result<Self, Error> {
-        Self::prepared(Arc::clone(&self.tables), settings, Some(self))
+        let tables = self.tables.with(&settings)?.map_or_else(|| Arc::clone(&self.tables), Arc::new);
+        Self::prepared(tables, settings, Some(self))
     }
 
     fn prepared(tables: Arc<Tables>, settings: Settings, before: Option<&Self>) -> Result<Self, Error> {
-        settings.check(tables.maps.names.len())?;
+        settings.check(tables.understood.maps.names.len())?;
         if settings.laplacian == Some(true) {
             return Err(Finding::new(Code::MapLaplacian).at(Place::input("maps")).into());
         }
         let head = settings.head.clone().unwrap_or_default();
         let shells = head.shells.map_or_else(|| Ok(Shells::standard()), Shells::new)?;
+        let understood = &tables.understood;
         let wishes = Wishes {
             exclude: settings.exclude.iter().map(|label| Label::new(label)).collect(),
             interpolated: settings.interpolated.iter().map(|label| Label::new(label)).collect(),
+            bad: understood.bad.clone(),
+            other_channels: understood.other_channels.clone(),
+            scalp: understood.scalp.clone(),
             axes: settings.axes,
             mirror: settings.mirror,
+            landmarks: understood.landmarks.clone(),
+            unit: settings.units,
+            declared_unit: understood.declared_unit,
+            components: understood.columns_are == ColumnsAre::Components,
             centre_mm: head.centre_mm,
             radius_mm: head.radius_mm,
-            ..Wishes::default()
         };
-        let placement = place(tables.electrodes.as_deref(), &tables.maps, &wishes)?;
+        let placed = place(understood.electrodes.as_deref(), &understood.maps, &wishes);
+        let mut placement = placed.map_err(|error| understood.in_file(error))?;
+        placement.notes.iter_mut().for_each(|note| understood.name_file(note));
         let radius = placement.sphere.sphere.radius;
         let directions = placement.directions();
         let same_head = |study: &&Self| study.shells == shells && study.placement.sphere.sphere.radius == radius;
@@ -134,7 +130,7 @@ impl Study {
             Some(study) => (Arc::new(Fitter::new(study.fitter.field().elsewhere(directions))), OnceLock::new()),
             None => (Arc::new(Fitter::new(LeadField::new(&shells, radius, directions))), OnceLock::new()),
         };
-        let notes = tables.notes.iter().chain(&placement.notes).cloned().collect();
+        let notes = tables.understood.notes.iter().chain(&placement.notes).cloned().collect();
         let mut study = Self { tables, settings, placement, shells, fitter, notes, spline };
         study.note_the_rest();
         Ok(study)
@@ -142,7 +138,7 @@ impl Study {
 
     /// Number of maps.
     pub fn count(&self) -> usize {
-        self.tables.maps.names.len()
+        self.tables.understood.maps.names.len()
     }
 
     /// The head of all fits.
@@ -189,6 +185,29 @@ impl Study {
             electrodes: self.electrodes(),
             maps: Vec::new(),
             notes: self.notes(),
+            understood: self.understood(),
+        }
+    }
+
+    /// What was made of the files.
+    pub fn understood(&self) -> UnderstoodReport {
+        let understood = &self.tables.understood;
+        let labels = &self.placement.labels;
+        let renamed = |(from, to): &(String, String)| Renamed { from: from.clone(), to: to.clone() };
+        UnderstoodReport {
+            files: understood.files.clone(),
+            choices: understood.choices.iter().chain(&self.placement.choices).map(ChoiceReport::from).collect(),
+            columns_are: understood.columns_are,
+            times: understood.moments.clone(),
+            labels: LabelsReport {
+                matched: labels.matched,
+                renamed: labels.renamed.iter().map(renamed).collect(),
+                without_value: labels.without_value.clone(),
+                without_position: labels.without_position.clone(),
+                not_scalp: labels.not_scalp.clone(),
+                interpolated: labels.interpolated.clone(),
+                reference: labels.reference.clone(),
+            },
         }
     }
 
@@ -267,7 +286,7 @@ impl Study {
     fn left_out(&self, index: usize, map: &FittedMap) -> Vec<(f64, f64)> {
         let Some(values) = self.values(index).ok() else { return Vec::new() };
         let reference = mean(&values);
-        let column = self.tables.maps.values.column(index);
+        let column = self.tables.understood.maps.values.column(index);
         let sign = self.sign(index);
         let out = || self.placement.electrodes.iter().zip(self.directions()).filter(|(e, _)| !e.used);
         let dipole = &map.dipole;
@@ -310,15 +329,16 @@ impl Study {
     fn reported(&self, index: usize, outcome: Result<FittedMap, Error>) -> MapReport {
         match outcome {
             Ok(map) => MapReport::Fitted(Box::new(map)),
-            Err(error) => {
-                MapReport::Failed { name: self.tables.maps.names[index].clone(), error: Box::new((&error).into()) }
-            }
+            Err(error) => MapReport::Failed {
+                name: self.tables.understood.maps.names[index].clone(),
+                error: Box::new((&error).into()),
+            },
         }
     }
 
     /// Values of a map at the used electrodes, in its unit.
     fn values(&self, index: usize) -> Result<Vec<f64>, Error> {
-        let column = self.tables.maps.values.column(index);
+        let column = self.tables.understood.maps.values.column(index);
         let values: Vec<f64> = self.placement.used().map(|e| column[e.row]).collect();
         let missing: Vec<String> = self
             .placement
@@ -330,13 +350,13 @@ impl Study {
         if missing.is_empty() {
             return Ok(values);
         }
-        let name = &self.tables.maps.names[index];
+        let name = &self.tables.understood.maps.names[index];
         let place = Place { label: missing.first().cloned(), map: Some(name.clone()), ..Place::input("maps") };
         Err(Finding::new(Code::MapIncomplete).at(place).with("map", name.as_str()).with("labels", missing).into())
     }
 
     fn constant(&self, index: usize) -> Error {
-        let name = &self.tables.maps.names[index];
+        let name = &self.tables.understood.maps.names[index];
         let place = Place { map: Some(name.clone()), ..Place::input("maps") };
         Finding::new(Code::MapConstant).at(place).with("map", name.as_str()).into()
     }
@@ -350,7 +370,7 @@ impl Study {
         let residual = measured.iter().zip(&projected).map(|(d, p)| d - p).collect();
         let activation_sd = self.settings.activation_sd(index);
         FittedMap {
-            name: self.tables.maps.names[index].clone(),
+            name: self.tables.understood.maps.names[index].clone(),
             flipped: self.settings.flipped(index),
             activation_sd,
             residual_variance: fit.residual_variance,
@@ -404,7 +424,7 @@ impl Study {
         // Row by row, as the values lie in memory; a map that lacks a value is not a number and passes no comparison.
         let mut sums = vec![[0.0f64; 2]; self.count()];
         for electrode in self.placement.used() {
-            for ([sum, squares], value) in sums.iter_mut().zip(self.tables.maps.values.row(electrode.row)) {
+            for ([sum, squares], value) in sums.iter_mut().zip(self.tables.understood.maps.values.row(electrode.row)) {
                 *sum += value;
                 *squares += value * value;
             }
@@ -415,7 +435,7 @@ impl Study {
         if referenced > 0 {
             self.notes.push(Finding::new(Code::AverageReferenced).with("maps", referenced).with("count", self.count()));
         }
-        if let Some(name) = self.tables.maps.names.iter().find(|name| hints_at_laplacian(name))
+        if let Some(name) = self.tables.understood.maps.names.iter().find(|name| hints_at_laplacian(name))
             && self.settings.laplacian.is_none()
         {
             let place = Place { map: Some(name.clone()), ..Place::input("maps") };
@@ -434,8 +454,4 @@ impl Study {
             self.notes.push(Finding::new(Code::SeriesOnly));
         }
     }
-}
-
-fn sha256(bytes: &[u8]) -> String {
-    Sha256::digest(bytes).iter().map(|byte| format!("{byte:02x}")).collect()
 }

@@ -192,7 +192,7 @@ codes! {
     InputEmpty = "input-empty",
     /// Error: an input over the size limit.
     InputTooLarge = "input-too-large",
-    /// Error: an input that is not UTF-8 text.
+    /// Error: bytes that do not belong into the encoding of a text.
     InputEncoding = "input-encoding",
     /// Error: a binary file that ends too early.
     InputTruncated = "input-truncated",
@@ -214,6 +214,24 @@ codes! {
     TableColumns = "table-columns",
     /// Error: a line has more or fewer fields than the others.
     TableRagged = "table-ragged",
+    /// Error: a table with more rows or columns than any that is read.
+    TableLarge = "table-large",
+    /// Error: a text that begins like JSON and is none.
+    JsonSyntax = "json-syntax",
+    /// Error: JSON that holds no table.
+    JsonContent = "json-content",
+    /// Error: no file holds maps.
+    MapsMissing = "maps-missing",
+    /// Error: several files for one purpose.
+    FilesSeveral = "files-several",
+    /// Error: numbers without labels of which neither side is as long as the labels known.
+    ShapeUnmatched = "shape-unmatched",
+    /// Error: a setting names a column that is not there.
+    ColumnUnknown = "column-unknown",
+    /// Error: an unmixing matrix that has no maps.
+    UnmixingSingular = "unmixing-singular",
+    /// Error: a baseline in which no map lies.
+    BaselineEmpty = "baseline-empty",
     /// Error: a field that should hold a number.
     NumberExpected = "number-expected",
     /// Error: a number too large or too small to be computed with.
@@ -294,6 +312,30 @@ codes! {
     LaplacianSuspected = "laplacian-suspected",
     /// Note: a first line without a usual name was taken as names of the columns.
     HeaderAssumed = "header-assumed",
+    /// Note: lines above the table were passed over.
+    TitlePassedOver = "title-passed-over",
+    /// Note: text was taken as Latin-1.
+    EncodingAssumed = "encoding-assumed",
+    /// Note: decimals are written with a comma.
+    DecimalComma = "decimal-comma",
+    /// Note: columns that hold neither labels nor values.
+    ColumnsPassedOver = "columns-passed-over",
+    /// Note: a part of a file that is not needed.
+    PartUnused = "part-unused",
+    /// Note: a file that is not needed.
+    FileUnused = "file-unused",
+    /// Note: positions were computed from angles.
+    AnglesRead = "angles-read",
+    /// Note: numbers without labels took them from another table, in its order.
+    LabelsByOrder = "labels-by-order",
+    /// Note: nothing tells which way a square matrix lies.
+    OrientationAssumed = "orientation-assumed",
+    /// Note: maps are the pseudo-inverse of an unmixing matrix.
+    UnmixingInverted = "unmixing-inverted",
+    /// Note: no sphering matrix stands beside an unmixing matrix.
+    SpheringAbsent = "sphering-absent",
+    /// Note: the mean of a window of time was subtracted.
+    BaselineSubtracted = "baseline-subtracted",
     /// Note: the length unit was recognised by the size of the head.
     UnitRecognised = "unit-recognised",
     /// Note: positions on a unit sphere were scaled to the standard head.
@@ -369,6 +411,24 @@ impl Error {
     /// What is wrong, where, and with which values.
     pub fn finding(&self) -> &Finding {
         &self.0
+    }
+}
+
+impl Error {
+    /// The same, in a file that stands inside another.
+    pub fn inside(mut self, file: &str) -> Self {
+        self.0.place.get_or_insert_default().file.get_or_insert_with(|| file.to_owned());
+        self
+    }
+
+    /// The same, in an input and, where one is known, a file; a file inside is kept.
+    pub fn within(mut self, input: &'static str, file: Option<&str>) -> Self {
+        let place = self.0.place.get_or_insert_default();
+        place.input = Some(input);
+        if place.file.is_none() {
+            place.file = file.map(String::from);
+        }
+        self
     }
 }
 

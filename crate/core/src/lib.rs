@@ -1,7 +1,7 @@
 //! Single-dipole localisation of scalp EEG maps in spherical heads.
 //!
 //! The science of Inward as a pure library: no files, no clock, no hidden randomness. A map goes one way:
-//! bytes → [`read`] → [`placement`] → [`fit`] (which asks [`forward`]) → [`assess`] → [`report`] and [`scene`].
+//! bytes → [`read`] → [`understand`] → [`placement`] → [`fit`] (which asks [`forward`]) → [`assess`] → [`report`] and [`scene`].
 //! A module imports only from those listed above it here. [`analyse()`] and [`Study`] do the whole way in one call.
 //!
 //! Every result is the same, bit for bit, natively and in WebAssembly: transcendental functions come from `libm`,
@@ -15,6 +15,8 @@ pub mod head;
 pub mod map;
 
 pub mod read;
+
+pub mod understand;
 
 pub mod placement;
 
@@ -30,7 +32,7 @@ pub mod report;
 
 mod analyse;
 
-pub use analyse::{Request, Study, analyse};
+pub use analyse::{Request, Study, analyse, kind};
 pub use finding::{Choice, Code, Error, Finding, Origin, Place};
 pub use math::Vec3;
 pub use report::{MapReport, Program, Report, Settings};

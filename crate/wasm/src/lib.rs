@@ -37,17 +37,17 @@ pub fn heads() -> Result<JsValue, JsValue> {
 #[wasm_bindgen(js_name = kindOf)]
 pub fn kind_of(content: JsValue) -> Result<JsValue, JsValue> {
     let bytes = wire::bytes(&content, "content")?.unwrap_or_default();
-    plain(&inward_core::read::kind(&bytes))
+    plain(&inward_core::kind(&bytes))
 }
 
-/// The report of `{ electrodes?, maps, settings? }`.
+/// The report of `{ electrodes?, maps, settings? }` or `{ files: [{ name, content }], settings? }`.
 #[wasm_bindgen]
 pub fn analyse(request: JsValue) -> Result<JsValue, JsValue> {
     let inputs = Inputs::from_js(&request)?;
     plain(&inward_core::analyse(&inputs.request()).map_err(|error| thrown(&error))?)
 }
 
-/// Reads and prepares `{ electrodes?, maps, settings? }` once, to fit maps one by one.
+/// Reads and prepares `{ electrodes?, maps, settings? }` or `{ files: [{ name, content }], settings? }` once, to fit maps one by one.
 #[wasm_bindgen]
 pub fn open(request: JsValue) -> Result<Study, JsValue> {
     let inputs = Inputs::from_js(&request)?;
@@ -148,6 +148,7 @@ impl Inputs {
         Request {
             electrodes: self.electrodes.as_deref(),
             maps: &self.maps,
+            files: self.files.iter().map(|(name, content)| (name.as_str(), content.as_slice())).collect(),
             settings: self.settings.clone(),
             build: BUILD,
         }

@@ -10,27 +10,57 @@ use wasm_bindgen::prelude::*;
 pub(crate) struct Inputs {
     pub electrodes: Option<Vec<u8>>,
     pub maps: Vec<u8>,
+    pub files: Vec<(String, Vec<u8>)>,
     pub settings: Settings,
 }
 
 impl Inputs {
-    /// Takes `{ electrodes?, maps, settings? }`; what else stands in it is refused.
+    /// Takes `{ electrodes?, maps, settings? }` or `{ files: [{ name, content }], settings? }`; what else stands in it is refused.
     pub(crate) fn from_js(request: &JsValue) -> Result<Self, JsValue> {
         if !request.is_object() {
             return Err(thrown(&Settings::unknown("the request is not an object")));
         }
         for key in Object::keys(request.unchecked_ref::<Object>()).iter() {
             let key = key.as_string().unwrap_or_default();
-            if !["electrodes", "maps", "settings"].contains(&key.as_str()) {
+            if !["electrodes", "maps", "files", "settings"].contains(&key.as_str()) {
                 return Err(thrown(&Settings::unknown(format!("unknown part `{key}` of the request"))));
             }
         }
         let part = |name: &str| Reflect::get(request, &name.into()).unwrap_or(JsValue::UNDEFINED);
         let settings = settings(&part("settings"))?;
+        let files = files(&part("files"))?;
+        if !files.is_empty() {
+            if !part("electrodes").is_undefined() || !part("maps").is_undefined() {
+                return Err(thrown(&Settings::unknown(
+                    "`files` stand in place of `electrodes` and `maps`, not beside them",
+                )));
+            }
+            return Ok(Self { electrodes: None, maps: Vec::new(), files, settings });
+        }
         let maps = bytes(&part("maps"), "maps")?
             .ok_or_else(|| thrown(&Finding::new(Code::InputEmpty).at(Place::input("maps")).into()))?;
-        Ok(Self { electrodes: bytes(&part("electrodes"), "electrodes")?, maps, settings })
+        Ok(Self { electrodes: bytes(&part("electrodes"), "electrodes")?, maps, files, settings })
     }
+}
+
+/// Names and contents of `[{ name, content }]`.
+fn files(given: &JsValue) -> Result<Vec<(String, Vec<u8>)>, JsValue> {
+    if given.is_undefined() || given.is_null() {
+        return Ok(Vec::new());
+    }
+    let unknown = || thrown(&Settings::unknown(misunderstood("files")));
+    let list = given.dyn_ref::<Array>().ok_or_else(unknown)?;
+    let file = |given: JsValue| {
+        let part = |name: &str| Reflect::get(&given, &name.into()).unwrap_or(JsValue::UNDEFINED);
+        let alone = given.is_object() && keys(&given).all(|key| ["name", "content"].contains(&key.as_str()));
+        let name = part("name").as_string().filter(|_| alone).ok_or_else(unknown)?;
+        let content = bytes(&part("content"), "content")?.ok_or_else(unknown)?;
+        Ok((name, content))
+    };
+    if list.length() == 0 {
+        return Err(thrown(&Finding::new(Code::MapsMissing).at(Place::input("maps")).into()));
+    }
+    list.iter().map(file).collect()
 }
 
 /// The settings. Keys that are `undefined` are as good as absent; `serde_wasm_bindgen` asks objects for the keys it knows,

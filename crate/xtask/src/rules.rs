@@ -6,13 +6,14 @@ use crate::workspace::{Workspace, files, read, slashed, text};
 use anyhow::{Context, Result, bail};
 
 /// The modules of the core, each of which imports only from those before it.
-const ORDER: [&str; 13] = [
+const ORDER: [&str; 14] = [
     "finding",
     "math",
     "electrode",
     "head",
     "map",
     "read",
+    "understand",
     "placement",
     "forward",
     "fit",

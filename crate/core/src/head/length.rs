@@ -1,13 +1,16 @@
 use super::HEAD_RADII_MM;
 
 /// A unit of length that electrode tables use.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, serde::Serialize, serde::Deserialize)]
 pub enum LengthUnit {
     /// Metres.
+    #[serde(rename = "m")]
     Metre,
     /// Centimetres.
+    #[serde(rename = "cm")]
     Centimetre,
     /// Millimetres.
+    #[serde(rename = "mm")]
     Millimetre,
 }
 

@@ -1,3 +1,4 @@
+use crate::finding::{Choice, Finding};
 use ndarray::Array2;
 
 /// What a file holds, without any meaning: that is for `understand` to find.
@@ -9,6 +10,17 @@ pub struct Content {
     pub encoding: Option<Encoding>,
     /// Its tables and lists, in the order of the file.
     pub parts: Vec<Part>,
+    /// What was inferred while reading.
+    pub choices: Vec<Choice>,
+    /// What is to be said about it.
+    pub notes: Vec<Finding>,
+}
+
+impl Content {
+    /// The parts of a binary file.
+    pub fn of(format: Format, parts: Vec<Part>) -> Self {
+        Self { format, encoding: None, parts, choices: Vec::new(), notes: Vec::new() }
+    }
 }
 
 /// A format of files.
@@ -113,6 +125,23 @@ impl Cells {
         self.headed
     }
 
+    /// A table of fields that stand one behind another in a string, by their ends.
+    pub(super) fn from_packed(text: String, ends: Vec<u32>, lines: Vec<u32>, width: usize) -> Self {
+        Self { text, ends, lines, width, headed: false }
+    }
+
+    /// Puts names above the columns.
+    pub(super) fn put_first<'a>(&mut self, line: usize, names: impl IntoIterator<Item = &'a str>) {
+        let mut first = Self::new(self.width);
+        first.push(line, names);
+        let moved = first.text.len() as u32;
+        self.ends.iter_mut().for_each(|end| *end = end.saturating_add(moved));
+        self.ends.splice(..0, first.ends);
+        self.lines.splice(..0, first.lines);
+        self.text.insert_str(0, &first.text);
+        self.headed = true;
+    }
+
     /// Adds a row: missing fields are empty, further ones are dropped.
     pub fn push<'a>(&mut self, line: usize, fields: impl IntoIterator<Item = &'a str>) {
         let mut fields = fields.into_iter();
@@ -121,6 +150,11 @@ impl Cells {
             self.ends.push(u32::try_from(self.text.len()).unwrap_or(u32::MAX));
         }
         self.lines.push(u32::try_from(line).unwrap_or(u32::MAX));
+    }
+
+    /// Whether any field has this character.
+    pub fn contains(&self, character: char) -> bool {
+        self.text.contains(character)
     }
 
     /// Number of columns.

@@ -33,7 +33,7 @@ pub fn message(finding: &Finding) -> String {
             format!("The {input} is larger than {} MiB, the most that is read.", value("most_mib"))
         }
         Code::InputEncoding => {
-            format!("The {input} is not UTF-8 text: byte {byte} does not belong there.")
+            format!("The {input} is not text in {}: byte {byte} does not belong there.", value("encoding"))
         }
         Code::InputTruncated => format!(
             "The {input} ends at byte {byte}, in {}: at least {} more bytes belong there.",
@@ -71,11 +71,45 @@ pub fn message(finding: &Finding) -> String {
             value("most_maps")
         ),
         Code::TableColumns => format!("The {input} lacks {} (line {line}).", value("lacks")),
-        Code::TableRagged => format!(
-            "Line {line} of the {input} has {} fields, the first line has {}.",
+        Code::TableRagged => {
+            format!("Line {line} of the {input} has {} fields, most lines have {}.", value("found"), value("expected"))
+        }
+        Code::TableLarge => format!(
+            "Line {line} of the {input}: at least {} rows or columns; tables of up to {} maps are read.",
             value("found"),
-            value("expected")
+            value("most")
         ),
+        Code::JsonSyntax => match finding.value("cut_short") {
+            Some(Value::Flag(true)) => {
+                format!("The {input} ends in line {line} (byte {byte}) before its JSON does.")
+            }
+            _ => format!("The {input} is not JSON: line {line} (byte {byte}) cannot stand there."),
+        },
+        Code::JsonContent => format!("The {input} holds JSON that is no table: line {line}: {}.", value("why")),
+        Code::MapsMissing => match value("file").as_str() {
+            "" => "No file was given.".into(),
+            _ => "None of the files holds maps.".into(),
+        },
+        Code::FilesSeveral => format!("Several files hold {}: {}.", role(&value("role")), value("files")),
+        Code::ShapeUnmatched => format!(
+            "The {input} has {} rows and {} columns without labels; neither side is as long as the labels known, which are {}.",
+            value("rows"),
+            value("columns"),
+            value("labels")
+        ),
+        Code::ColumnUnknown => format!(
+            "The {input} has no column “{}”; it has {} columns{}.",
+            value("column"),
+            value("width"),
+            match value("known").as_str() {
+                "" => String::new(),
+                known => format!(": {known}"),
+            }
+        ),
+        Code::UnmixingSingular => format!("The unmixing matrix has no maps: {}.", value("why")),
+        Code::BaselineEmpty => {
+            format!("No map lies between {} and {} {}.", value("from"), value("to"), value("unit"))
+        }
         Code::NumberExpected => format!(
             "Line {line}, column {} of the {input}: “{}” is not a number.",
             place.and_then(|p| p.column).unwrap_or(1),
@@ -239,6 +273,54 @@ pub fn message(finding: &Finding) -> String {
             "By its name the map “{}” may be a surface Laplacian (a current density), to which no potential can be fitted: please say whether it is.",
             value("map")
         ),
+        Code::TitlePassedOver => match value("last") {
+            last if last == line.to_string() => {
+                format!("Line {line} of the {input} stands above the table and was passed over.")
+            }
+            last => format!("Lines {line} to {last} of the {input} stand above the table and were passed over."),
+        },
+        Code::EncodingAssumed => {
+            format!("The {input} is not UTF-8; its characters were taken as Latin-1, one byte each.")
+        }
+        Code::DecimalComma => format!("Commas in the numbers of the {input} were taken as decimal marks."),
+        Code::ColumnsPassedOver => {
+            format!("Columns of the {input} without values were passed over: {}.", value("columns"))
+        }
+        Code::PartUnused => match value("part").as_str() {
+            "" => format!("The {input} was not needed."),
+            part => format!("The part “{part}” of the {input} was not needed."),
+        },
+        Code::FileUnused => format!("The {input} holds nothing that is needed, and was left aside."),
+        Code::AnglesRead => format!(
+            "Positions of the {input} were computed from angles: {} and azimuth in {}{}.",
+            value("polar"),
+            value("unit"),
+            if value("radius") == "yes" { ", at the distance given" } else { "" }
+        ),
+        Code::LabelsByOrder => format!(
+            "The {} rows of numbers in the {input} have no labels; they were taken in the order of the labels known.",
+            value("count")
+        ),
+        Code::OrientationAssumed => format!(
+            "The {input} is square, {} by {}: each row was taken as an electrode.",
+            value("rows"),
+            value("rows")
+        ),
+        Code::UnmixingInverted => format!(
+            "The maps are the pseudo-inverse of the unmixing matrix: {} maps of {} independent components.",
+            value("maps"),
+            value("components")
+        ),
+        Code::SpheringAbsent => {
+            "No sphering matrix was given: if the unmixing was kept apart from it, these maps are wrong.".into()
+        }
+        Code::BaselineSubtracted => format!(
+            "The mean from {} to {} {} was subtracted at each electrode ({} maps).",
+            value("from"),
+            value("to"),
+            value("unit"),
+            value("maps")
+        ),
         Code::HeaderAssumed => format!("The first line of the {input} was taken as the names of its columns."),
         Code::UnitRecognised => format!(
             "Positions were taken as {}: the fitted head then has a radius of {} mm.",
@@ -296,7 +378,6 @@ pub fn hint(code: Code) -> &'static str {
         }
         Code::InputEmpty => "Give a table with a label and a value or a position in each line.",
         Code::InputTooLarge => "Split the table, or leave out columns that are not needed.",
-        Code::InputEncoding => "Save the table as text in UTF-8 and give it again.",
         Code::InputTruncated => "Copy or export the file again; this one is not whole.",
         Code::InputDamaged => "Export the file again, or write the table as text.",
         Code::InputHdf5 => "In MATLAB, save with save('name.mat', 'variable', '-v7'); or write the table as text.",
@@ -311,12 +392,30 @@ pub fn hint(code: Code) -> &'static str {
         Code::ArraySize => {
             "Save a matrix of electrodes and maps, without further dimensions and without the recording itself."
         }
+        Code::InputEncoding => "Choose another encoding, or save the table as text in UTF-8 and give it again.",
         Code::TableColumns => {
             "Electrodes need the columns label, x, y, z, or labels alone, one in each line; maps need a label and at least one value in each line. A first line with such names settles which column is which."
         }
+        Code::TableLarge => "Split the table; at most 512 electrodes and 65,536 maps are read.",
+        Code::JsonSyntax => "Correct the text there, or write the file again from the program it comes from.",
+        Code::JsonContent => {
+            "Give a list of lists of numbers, a list of records with the same keys, a record of equally long lists, or { labels, positions, maps }."
+        }
+        Code::MapsMissing => {
+            "Add a table with a label and a value in each line, or say in the settings which file holds the maps."
+        }
+        Code::FilesSeveral => "Remove all but one, or say in the settings what the others are.",
+        Code::ShapeUnmatched => {
+            "Give a table of electrodes or a list of labels with as many entries, in the same order, or a table with labels."
+        }
+        Code::ColumnUnknown => "Name a column of the header, or give its number from 1.",
+        Code::UnmixingSingular => {
+            "Give the weights without gaps, a row for each component, with the sphering matrix of the same channels if there is one."
+        }
+        Code::BaselineEmpty => "Give the window in the unit of the times, or correct start and step.",
         Code::TableRagged => "Give every line the same number of fields, divided by the same mark.",
         Code::NumberExpected => {
-            "Correct the field, or write n/a where there is no value. Decimals are written with a point."
+            "Correct the field, or write n/a where there is no value. Decimals have a point, or all of them a comma."
         }
         Code::NumberRange => "Correct the field, or scale the whole table.",
         Code::LabelDuplicate => "Rename or remove one of the two lines.",
@@ -366,6 +465,10 @@ pub fn is_warning(code: Code) -> bool {
             | Code::ValuesWithoutPosition
             | Code::ExcludeUnmatched
             | Code::SphereDeviation
+            | Code::EncodingAssumed
+            | Code::OrientationAssumed
+            | Code::SpheringAbsent
+            | Code::FileUnused
     )
 }
 
@@ -402,11 +505,24 @@ pub(super) fn axes_words(name: &str) -> String {
     words.collect::<Vec<_>>().join(", ")
 }
 
-fn input_name(place: Option<&Place>) -> &'static str {
+fn input_name(place: Option<&Place>) -> String {
+    if let Some(file) = place.and_then(|p| p.file.as_deref()) {
+        return format!("file “{}”", clipped(file));
+    }
     match place.and_then(|p| p.input) {
-        Some("electrodes") => "table of electrodes",
-        Some("maps") => "table of maps",
-        _ => "input",
+        Some("electrodes") => "table of electrodes".into(),
+        Some("maps") => "table of maps".into(),
+        _ => "input".into(),
+    }
+}
+
+/// What several files hold, by the name of their role.
+fn role(name: &str) -> &'static str {
+    match name {
+        "electrodes" => "electrodes",
+        "channels" => "a table of channels",
+        "sphering" => "a sphering matrix",
+        _ => "maps",
     }
 }
 
@@ -473,6 +589,13 @@ fn reason(key: &str) -> &'static str {
         "range" => "holds numbers that are infinite or beyond 1e-100 to 1e100",
         "nested" => "more than four levels deep",
         "mixed" => "neither words, nor numbers, nor vectors of one length",
+        "json-scalar" => "it is a single value",
+        "json-mixed" => "its entries are of different kinds",
+        "json-deep" => "it is nested more deeply than a table",
+        "json-large" => "it has more entries than a table can have",
+        "sphering-size" => "the sphering matrix does not have a row and a column for each channel",
+        "unmixing-gaps" => "values are missing",
+        "unmixing-zero" => "all weights are zero",
         _ => {
             debug_assert!(false, "no reason for {key}");
             ""

@@ -1,11 +1,13 @@
 //! Results as they leave the program: plain structures for reports, and the only place where numbers become text.
 
+mod choices;
 mod figure;
 mod messages;
 mod number;
 mod settings;
 mod sheet;
 
+pub use choices::{ChoiceReport, OptionReport};
 pub use figure::{Figure, FigureDipole, FigureShell};
 pub use messages::{hint, is_warning, message};
 pub use settings::{Assessment, HeadSettings, Polarity, Settings};
@@ -15,6 +17,7 @@ use crate::finding::{Code, Error, Finding, Place, Value};
 use crate::fit::Stopped;
 use crate::head::Shell;
 use crate::math::Vec3;
+use crate::understand::{ColumnsAre, FileFacts, Moments};
 use serde::Serialize;
 use std::collections::BTreeMap;
 
@@ -39,6 +42,51 @@ pub struct Report {
     pub maps: Vec<MapReport>,
     /// What was assumed and what did not match.
     pub notes: Vec<Note>,
+    /// What was made of the files, with everything that can be changed.
+    pub understood: UnderstoodReport,
+}
+
+/// What was made of the files.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct UnderstoodReport {
+    /// One entry for each file, or for each part of it.
+    pub files: Vec<FileFacts>,
+    /// Inferences that a setting changes.
+    pub choices: Vec<ChoiceReport>,
+    /// How the maps belong together.
+    pub columns_are: ColumnsAre,
+    /// When the maps were, where that is known.
+    pub times: Option<Moments>,
+    /// What became of the labels.
+    pub labels: LabelsReport,
+}
+
+/// What became of the labels.
+#[derive(Clone, Debug, Default, PartialEq, Serialize)]
+pub struct LabelsReport {
+    /// How many have a position and a value.
+    pub matched: usize,
+    /// Labels that were read as other names.
+    pub renamed: Vec<Renamed>,
+    /// With a position, without a value.
+    pub without_value: Vec<String>,
+    /// With a value, without a position.
+    pub without_position: Vec<String>,
+    /// Of channels that do not measure the scalp.
+    pub not_scalp: Vec<String>,
+    /// Of channels that were interpolated.
+    pub interpolated: Vec<String>,
+    /// The common reference that the labels name.
+    pub reference: Option<String>,
+}
+
+/// A label that was read as another name.
+#[derive(Clone, Debug, PartialEq, Eq, Serialize)]
+pub struct Renamed {
+    /// As it is written.
+    pub from: String,
+    /// As it was read.
+    pub to: String,
 }
 
 /// Name and version of the program.
@@ -55,8 +103,8 @@ pub struct Program {
 /// An input.
 #[derive(Clone, Debug, PartialEq, Eq, Serialize)]
 pub struct Input {
-    /// `electrodes` or `maps`.
-    pub name: &'static str,
+    /// `electrodes`, `maps`, or the name of the file.
+    pub name: String,
     /// SHA-256 of its bytes, hexadecimal.
     pub sha256: String,
 }

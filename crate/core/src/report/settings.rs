@@ -1,8 +1,12 @@
 use crate::finding::{Code, Error, Finding, Place};
-use crate::head::{AxesName, ShellSpec};
+use crate::head::{AxesName, LengthUnit, ShellSpec};
 use crate::map::MapUnit;
 use crate::math::Vec3;
+use crate::understand::{
+    AngleWishes, Baseline, ColumnWishes, ColumnsAre, FileWishes, MapsAre, Orientation, Times, Wishes,
+};
 use serde::{Deserialize, Serialize};
+use std::collections::BTreeMap;
 
 /// What the user may choose; all optional, unknown keys and values are refused.
 #[derive(Clone, Debug, Default, PartialEq, Serialize, Deserialize)]
@@ -32,6 +36,24 @@ pub struct Settings {
     pub activation_sd: Vec<Option<f64>>,
     /// What to add to each fit.
     pub assess: Vec<Assessment>,
+    /// What is said about single files, by their names.
+    pub files: BTreeMap<String, FileWishes>,
+    /// Unit of the positions.
+    pub units: Option<LengthUnit>,
+    /// Which way the table of maps lies.
+    pub orientation: Option<Orientation>,
+    /// What the table of maps holds.
+    pub maps_are: Option<MapsAre>,
+    /// Columns of the table of electrodes.
+    pub columns: ColumnWishes,
+    /// What angles in the table of electrodes mean.
+    pub angles: AngleWishes,
+    /// How the maps belong together.
+    pub columns_are: Option<ColumnsAre>,
+    /// When the maps were.
+    pub times: Option<Times>,
+    /// The window of time whose mean is zero.
+    pub baseline: Option<Baseline>,
 }
 
 /// Whether the sign of a map means something.
@@ -80,6 +102,20 @@ impl Settings {
         match self.activation_sd.iter().position(invalid) {
             Some(index) => Err(finding(Code::ActivationSdInvalid, index).into()),
             None => Ok(()),
+        }
+    }
+
+    /// What they say about the meaning of the files.
+    pub fn wishes(&self) -> Wishes {
+        Wishes {
+            files: self.files.clone(),
+            orientation: self.orientation,
+            maps_are: self.maps_are,
+            columns: self.columns.clone(),
+            angles: self.angles.clone(),
+            columns_are: self.columns_are,
+            times: self.times,
+            baseline: self.baseline,
         }
     }
 

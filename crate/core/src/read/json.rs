@@ -1,0 +1,463 @@
+use super::content::{Body, Cells, Part, Record, Tree};
+use super::table::{is_missing, number};
+use super::{MOST_ELECTRODES, MOST_MAPS};
+use crate::finding::{Code, Error, Finding, Place};
+use core::fmt;
+use ndarray::Array2;
+use serde::de::{Deserializer, Error as _, MapAccess, SeqAccess, Visitor};
+use serde_json::value::RawValue;
+use std::borrow::Cow;
+use std::collections::HashMap;
+
+/// Lists and objects inside one another that are looked into: a table needs four.
+const DEEPEST: usize = 16;
+
+/// Most items of one list or object: a header beside the most maps.
+const MOST_ITEMS: usize = MOST_MAPS + 8;
+
+/// The parts of a JSON text: a list of lists of numbers is a matrix, a list of objects or an object of equally long
+/// lists is a table, any other object has a part for each of its lists and objects.
+///
+/// Values are pieces of the text until their place says what they are, so that a number is read as the same bits as in
+/// any other table and a row knows its line. Each level is passed once more, [`DEEPEST`] times at most.
+///
+/// # Errors
+/// `json-syntax` with line and byte; `json-content` for what is no table, or nested more deeply.
+pub(super) fn read_json(text: &str) -> Result<Vec<Part>, Error> {
+    let text = without_nan(text);
+    let text = &*text;
+    let root: &RawValue = serde_json::from_str(text).map_err(|error| {
+        let before: usize = text.split('\n').take(error.line().saturating_sub(1)).map(|line| line.len() + 1).sum();
+        let place =
+            Place { line: Some(error.line().max(1)), byte: Some((before + error.column()).max(1)), ..Place::default() };
+        Error::from(Finding::new(Code::JsonSyntax).at(place).with("cut_short", error.is_eof()))
+    })?;
+    let json = Json { text };
+    if root.get().starts_with('{') { json.object(root, None) } else { Ok(json.list(root, None)?.into_iter().collect()) }
+}
+
+/// The whole text, to tell where a piece of it stands.
+#[derive(Clone, Copy)]
+struct Json<'a> {
+    text: &'a str,
+}
+
+type Raw<'a> = &'a RawValue;
+
+impl<'a> Json<'a> {
+    /// Line of a piece of the text. Callers ask for few, or for one after another by [`Lines`].
+    fn place(self, piece: Raw<'_>) -> Place {
+        let at = self.offset(piece);
+        let line = self.text.as_bytes().iter().take(at).filter(|byte| **byte == b'\n').count() + 1;
+        Place { line: Some(line), byte: Some(at + 1), ..Place::default() }
+    }
+
+    fn offset(self, piece: Raw<'_>) -> usize {
+        (piece.get().as_ptr() as usize).saturating_sub(self.text.as_ptr() as usize).min(self.text.len())
+    }
+
+    fn refuse(self, piece: Raw<'_>, why: &'static str) -> Error {
+        Finding::new(Code::JsonContent).at(self.place(piece)).with("why", why).into()
+    }
+
+    fn items(self, list: Raw<'a>) -> Result<Vec<Raw<'a>>, Error> {
+        let mut source = serde_json::Deserializer::from_str(list.get());
+        source.deserialize_seq(Items).map_err(|_| self.refuse(list, "json-large"))
+    }
+
+    fn fields(self, object: Raw<'a>) -> Result<Vec<(String, Raw<'a>)>, Error> {
+        let mut source = serde_json::Deserializer::from_str(object.get());
+        source.deserialize_map(Fields).map_err(|_| self.refuse(object, "json-large"))
+    }
+
+    /// An object: columns of a table, or a part for each key that holds several values, and one for the others.
+    fn object(self, object: Raw<'a>, outer: Option<&str>) -> Result<Vec<Part>, Error> {
+        let fields = self.fields(object)?;
+        if let Some(table) = self.columns(&fields)? {
+            return Ok(vec![Part { name: outer.map(String::from), body: Body::Cells(table) }]);
+        }
+        let mut parts = Vec::new();
+        let mut record = Record::new();
+        for (key, value) in fields {
+            let name = outer.map_or_else(|| key.clone(), |outer| format!("{outer}.{key}"));
+            let nested = match value.get().as_bytes() {
+                [b'[', ..] => self.list(value, Some(&name)).ok().flatten().into_iter().collect(),
+                [b'{', ..] if outer.is_none() && !is_description(&key) => self.object(value, Some(&name))?,
+                _ => Vec::new(),
+            };
+            let tables = nested.iter().any(|part| !matches!(part.body, Body::Record(_)));
+            if tables {
+                parts.extend(nested);
+            } else {
+                record.push((key, self.tree(value, 0)?));
+            }
+        }
+        if !record.is_empty() {
+            parts.push(Part { name: outer.map(String::from), body: Body::Record(record) });
+        }
+        Ok(parts)
+    }
+
+    /// The table of an object whose values are equally long lists without further structure; `None` for other objects.
+    fn columns(self, fields: &[(String, Raw<'a>)]) -> Result<Option<Cells>, Error> {
+        let lists = fields.iter().all(|(_, value)| value.get().starts_with('['));
+        if !lists || fields.len() < 2 {
+            return Ok(None);
+        }
+        let columns = fields.iter().map(|(_, value)| self.items(value)).collect::<Result<Vec<_>, _>>()?;
+        let height = columns.first().map_or(0, Vec::len);
+        let flat = |column: &Vec<Raw<'_>>| column.len() == height && column.iter().all(|value| is_scalar(value));
+        if height < 2 || !columns.iter().all(flat) {
+            return Ok(None);
+        }
+        let mut cells = Cells::new(fields.len()).headed();
+        cells.push(1, fields.iter().map(|(key, _)| key.as_str()));
+        for row in 0..height {
+            let values: Vec<String> =
+                columns.iter().map(|column| column.get(row).map_or_else(String::new, |value| word(value))).collect();
+            cells.push(row + 1, values.iter().map(String::as_str));
+        }
+        Ok(Some(cells))
+    }
+
+    /// A list: words, numbers, rows of numbers, rows of fields, or objects with the same keys; `None` if it is empty.
+    fn list(self, list: Raw<'a>, name: Option<&str>) -> Result<Option<Part>, Error> {
+        if !list.get().starts_with('[') {
+            return Err(self.refuse(list, "json-scalar"));
+        }
+        let items = self.items(list)?;
+        let body = match items.first().map(|item| item.get().as_bytes()) {
+            None => return Ok(None),
+            Some([b'{', ..]) => Body::Cells(self.records(&items)?),
+            Some([b'[', ..]) => self.rows(&items)?,
+            Some(_) => self.scalars(&items, list)?,
+        };
+        Ok(Some(Part { name: name.map(String::from), body }))
+    }
+
+    fn scalars(self, items: &[Raw<'a>], list: Raw<'a>) -> Result<Body, Error> {
+        if let Some(nested) = items.iter().find(|item| !is_scalar(item)) {
+            return Err(self.refuse(nested, "json-mixed"));
+        }
+        if items.iter().any(|item| item.get().starts_with('"') && !is_missing(&word(item))) {
+            return Ok(Body::Words(items.iter().map(|item| word(item)).collect()));
+        }
+        let column = self.numbers(items)?;
+        let count = column.len();
+        let matrix = Array2::from_shape_vec((count, 1), column).map_err(|_| self.refuse(list, "json-mixed"))?;
+        Ok(Body::Numbers(matrix))
+    }
+
+    /// Rows of numbers, or of numbers and words.
+    fn rows(self, items: &[Raw<'a>]) -> Result<Body, Error> {
+        let mut matrix = Vec::new();
+        let mut width = None;
+        let mut lines = Lines::new(self);
+        for (index, item) in items.iter().enumerate() {
+            if !item.get().starts_with('[') {
+                return Err(self.refuse(item, "json-mixed"));
+            }
+            let row = self.items(item)?;
+            if let Some(nested) = row.iter().find(|value| !is_scalar(value)) {
+                return Err(self.refuse(nested, "json-deep"));
+            }
+            if row.iter().any(|value| value.get().starts_with('"') && !is_missing(&word(value))) {
+                return self.mixed(items);
+            }
+            let expected = *width.get_or_insert(row.len());
+            let line = lines.of(item);
+            if row.len() != expected {
+                let place = Place { line: Some(line), ..Place::default() };
+                let finding = Finding::new(Code::TableRagged).at(place);
+                return Err(finding.with("found", row.len()).with("expected", expected).into());
+            }
+            if (index > MOST_MAPS)
+                || (expected > MOST_MAPS + 1)
+                || (index > MOST_ELECTRODES && expected > MOST_ELECTRODES)
+            {
+                return Err(self.refuse(item, "json-large"));
+            }
+            matrix.extend(self.numbers(&row)?);
+        }
+        let shape = (items.len(), width.unwrap_or(0));
+        let first = items.first().copied();
+        Array2::from_shape_vec(shape, matrix).map(Body::Numbers).map_err(|_| {
+            first.map_or_else(|| Finding::new(Code::JsonContent).into(), |item| self.refuse(item, "json-mixed"))
+        })
+    }
+
+    fn mixed(self, items: &[Raw<'a>]) -> Result<Body, Error> {
+        let mut cells: Option<Cells> = None;
+        let mut lines = Lines::new(self);
+        for item in items {
+            let row = self.items(item)?;
+            if let Some(nested) = row.iter().find(|value| !is_scalar(value)) {
+                return Err(self.refuse(nested, "json-deep"));
+            }
+            let line = lines.of(item);
+            let cells = cells.get_or_insert_with(|| Cells::new(row.len()));
+            if row.len() != cells.width() {
+                let place = Place { line: Some(line), ..Place::default() };
+                let finding = Finding::new(Code::TableRagged).at(place);
+                return Err(finding.with("found", row.len()).with("expected", cells.width()).into());
+            }
+            let words: Vec<String> = row.iter().map(|value| word(value)).collect();
+            cells.push(line, words.iter().map(String::as_str));
+        }
+        Ok(Body::Cells(cells.unwrap_or_default()))
+    }
+
+    /// A table of objects; its columns are the keys of all of them, in the order in which they appear. A list of three
+    /// numbers, such as a position, makes the columns x, y, z.
+    fn records(self, items: &[Raw<'a>]) -> Result<Cells, Error> {
+        let mut names: Vec<String> = Vec::new();
+        let mut columns: HashMap<String, usize> = HashMap::new();
+        for item in items {
+            for (name, _) in self.record(item)? {
+                if !columns.contains_key(&name) {
+                    columns.insert(name.clone(), names.len());
+                    names.push(name);
+                }
+            }
+            if names.len() > MOST_ITEMS || (names.len() > 2 * MOST_ELECTRODES && items.len() > 2 * MOST_ELECTRODES) {
+                return Err(self.refuse(item, "json-large"));
+            }
+        }
+        let mut lines = Lines::new(self);
+        let mut cells = Cells::new(names.len()).headed();
+        cells.push(items.first().map_or(1, |first| lines.of(first)), names.iter().map(String::as_str));
+        let mut words = vec![String::new(); names.len()];
+        for item in items {
+            words.iter_mut().for_each(String::clear);
+            for (name, value) in self.record(item)? {
+                if let Some(field) = columns.get(&name).and_then(|&column| words.get_mut(column)) {
+                    *field = word(value);
+                }
+            }
+            cells.push(lines.of(item), words.iter().map(String::as_str));
+        }
+        Ok(cells)
+    }
+
+    /// The fields of an object in a list of them.
+    fn record(self, item: Raw<'a>) -> Result<Vec<(String, Raw<'a>)>, Error> {
+        if !item.get().starts_with('{') {
+            return Err(self.refuse(item, "json-mixed"));
+        }
+        let mut flat = Vec::new();
+        for (key, value) in self.fields(item)? {
+            let values = if value.get().starts_with('[') { self.items(value)? } else { vec![value] };
+            match values.as_slice() {
+                [value] if is_scalar(value) => flat.push((key, *value)),
+                [x, y, z] if [x, y, z].iter().all(|value| is_scalar(value)) => {
+                    flat.extend([("x".into(), *x), ("y".into(), *y), ("z".into(), *z)]);
+                }
+                _ => return Err(self.refuse(value, "json-deep")),
+            }
+        }
+        Ok(flat)
+    }
+
+    fn numbers(self, items: &[Raw<'_>]) -> Result<Vec<f64>, Error> {
+        let value = |(index, item): (usize, &Raw<'_>)| {
+            if item.get() == "null" || item.get().starts_with('"') {
+                return Ok(f64::NAN);
+            }
+            let place = || Place { column: Some(index + 1), ..self.place(item) };
+            super::table::expect_number(item.get(), false, place)
+        };
+        items.iter().enumerate().map(value).collect()
+    }
+
+    fn tree(self, value: Raw<'a>, depth: usize) -> Result<Tree, Error> {
+        if depth > DEEPEST {
+            return Err(self.refuse(value, "json-deep"));
+        }
+        Ok(match value.get().as_bytes() {
+            [b'[', ..] => Tree::List(
+                self.items(value)?.into_iter().map(|item| self.tree(item, depth + 1)).collect::<Result<_, _>>()?,
+            ),
+            [b'{', ..] => {
+                let fields = self.fields(value)?.into_iter();
+                Tree::Record(
+                    fields.map(|(key, item)| Ok((key, self.tree(item, depth + 1)?))).collect::<Result<_, Error>>()?,
+                )
+            }
+            [b'"', ..] => Tree::Text(word(value)),
+            _ => number(value.get()).map_or(Tree::Nothing, Tree::Number),
+        })
+    }
+}
+
+/// Lines of pieces that follow each other, counted on from the last one.
+struct Lines<'a> {
+    json: Json<'a>,
+    at: usize,
+    line: usize,
+}
+
+impl<'a> Lines<'a> {
+    fn new(json: Json<'a>) -> Self {
+        Self { json, at: 0, line: 1 }
+    }
+
+    fn of(&mut self, piece: Raw<'_>) -> usize {
+        let at = self.json.offset(piece);
+        let between = self.json.text.as_bytes().get(self.at..at).unwrap_or_default();
+        self.line += between.iter().filter(|byte| **byte == b'\n').count();
+        self.at = self.at.max(at);
+        self.line
+    }
+}
+
+/// Objects that describe, and hold no table even if their lists look like columns.
+fn is_description(key: &str) -> bool {
+    let key = key.to_ascii_lowercase();
+    ["coordinates", "landmark", "fiducial"].iter().any(|word| key.contains(word))
+}
+
+fn is_scalar(value: &RawValue) -> bool {
+    !value.get().starts_with(['[', '{'])
+}
+
+/// A value without structure as a field of a table: `null` is missing, numbers stay as they are written.
+fn word(value: &RawValue) -> String {
+    match value.get() {
+        "null" => String::new(),
+        quoted if quoted.starts_with('"') => serde_json::from_str::<String>(quoted).unwrap_or_default().trim().into(),
+        plain => plain.into(),
+    }
+}
+
+/// Keys and values of an object, in their order.
+struct Fields;
+
+impl<'de> Visitor<'de> for Fields {
+    type Value = Vec<(String, &'de RawValue)>;
+
+    fn expecting(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.write_str("an object")
+    }
+
+    fn visit_map<A: MapAccess<'de>>(self, mut map: A) -> Result<Self::Value, A::Error> {
+        let mut fields = Vec::new();
+        while let Some(field) = map.next_entry()? {
+            fields.push(field);
+            if fields.len() > MOST_ITEMS {
+                return Err(A::Error::custom("too many"));
+            }
+        }
+        Ok(fields)
+    }
+}
+
+/// Values of a list.
+struct Items;
+
+impl<'de> Visitor<'de> for Items {
+    type Value = Vec<&'de RawValue>;
+
+    fn expecting(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.write_str("a list")
+    }
+
+    fn visit_seq<A: SeqAccess<'de>>(self, mut list: A) -> Result<Self::Value, A::Error> {
+        let mut items = Vec::new();
+        while let Some(item) = list.next_element()? {
+            items.push(item);
+            if items.len() > MOST_ITEMS {
+                return Err(A::Error::custom("too many"));
+            }
+        }
+        Ok(items)
+    }
+}
+
+/// The text with each `NaN` outside strings written as an empty string, which is as long: JSON has no NaN, but programs
+/// that write it are common.
+fn without_nan(text: &str) -> Cow<'_, str> {
+    let outside = |piece: &str, quoted: bool| !quoted && piece.contains("NaN");
+    let mut quoted = false;
+    let mut found = false;
+    let mut result = String::new();
+    for (index, piece) in text.split('"').enumerate() {
+        if index > 0 {
+            result.push('"');
+        }
+        if outside(piece, quoted) {
+            found = true;
+            result.push_str(&piece.replace("NaN", "\"\" "));
+        } else {
+            result.push_str(piece);
+        }
+        let escaped = quoted && piece.bytes().rev().take_while(|byte| *byte == b'\\').count() % 2 == 1;
+        quoted = quoted == escaped;
+    }
+    if found { result.into() } else { text.into() }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn parts(text: &str) -> Vec<Part> {
+        read_json(text).map_err(|error| format!("{error:?}")).unwrap_or_default()
+    }
+
+    fn rows(part: &Part) -> Vec<Vec<String>> {
+        match &part.body {
+            Body::Cells(cells) => (0..cells.height()).map(|row| cells.row(row).map(String::from).collect()).collect(),
+            _ => Vec::new(),
+        }
+    }
+
+    #[test]
+    fn lists_and_objects_become_tables_matrices_and_words() {
+        let matrix = parts("[[1, 2.5],\n [NaN, null]]");
+        let Some(Body::Numbers(numbers)) = matrix.first().map(|part| &part.body) else { panic!("{matrix:?}") };
+        assert_eq!((numbers.dim(), numbers.iter().filter(|v| v.is_nan()).count()), ((2, 2), 2));
+        let expected = [["name", "x", "y"], ["Fz", "1", "-2e-1"], ["Cz NaN", "", "3"]];
+        for text in [
+            r#"[{"name": "Fz", "x": 1, "y": -2e-1}, {"y": 3, "name": "Cz NaN", "x": null}]"#,
+            r#"{"name": ["Fz", "Cz NaN"], "x": [1, null], "y": [-2e-1, 3]}"#,
+        ] {
+            let found = parts(text);
+            assert_eq!(found.iter().map(rows).collect::<Vec<_>>(), [expected], "{text}");
+        }
+        let several = parts(r#"{"labels": ["Fz", "Cz"], "positions": [[1, 2, 3], [4, 5, 6]], "unit": "mm"}"#);
+        let names: Vec<Option<&str>> = several.iter().map(|part| part.name.as_deref()).collect();
+        assert_eq!(names, [Some("labels"), Some("positions"), None]);
+        let record = vec![("unit".into(), Tree::Text("mm".into()))];
+        assert_eq!(several.last().map(|part| &part.body), Some(&Body::Record(record)));
+        let positions = parts(r#"[{"label": "Fz", "position": [1, 2, 3]}, {"label": "Cz", "position": [4, 5, 6]}]"#);
+        assert_eq!(
+            positions.iter().map(rows).collect::<Vec<_>>(),
+            [[["label", "x", "y", "z"], ["Fz", "1", "2", "3"], ["Cz", "4", "5", "6"]]]
+        );
+    }
+
+    #[test]
+    fn a_description_keeps_its_lists() {
+        let text =
+            r#"{"EEGCoordinateUnits": "mm", "AnatomicalLandmarkCoordinates": {"LPA": [1, 2, 3], "NAS": [4, 5, 6]}}"#;
+        let found = parts(text);
+        assert!(
+            matches!(found.as_slice(), [Part { body: Body::Record(record), .. }] if record.len() == 2),
+            "{found:?}"
+        );
+    }
+
+    #[test]
+    fn what_is_no_table_is_refused_with_its_place() {
+        let place = |text: &str| {
+            let error = read_json(text).err().map(|error| error.finding().clone());
+            error.map(|finding| (finding.code, finding.place.and_then(|place| Some((place.line?, place.byte)))))
+        };
+        assert_eq!(place("[[1, 2],\n[3, ]]"), Some((Code::JsonSyntax, Some((2, Some(14))))));
+        assert_eq!(place("[[1, 2],"), Some((Code::JsonSyntax, Some((1, Some(8))))));
+        assert_eq!(place("[[1, 2],\n[3]]"), Some((Code::TableRagged, Some((2, None)))));
+        assert_eq!(place("[[1, 2],\n[3, [4]]]"), Some((Code::JsonContent, Some((2, Some(14))))));
+        let deep = "[".repeat(100_000) + &"]".repeat(100_000);
+        assert!(place(&deep).is_some());
+    }
+}

@@ -1,0 +1,325 @@
+use super::Decimal;
+use crate::electrode::{Kind, Label, Reading};
+use crate::finding::{Error, Origin, Place};
+use crate::read::{
+    Body, Cells, Part, expect_number, has_decimal_comma, is_label_name, is_missing, number, number_with_comma,
+};
+use ndarray::ArrayView2;
+
+/// Rows that are looked at to find words.
+const SAMPLE: usize = 64;
+
+/// A part of a file as rows and named columns of numbers and words.
+#[derive(Clone, Debug)]
+pub(super) struct Grid<'a> {
+    /// Number of the file.
+    pub file: usize,
+    /// Name of the part.
+    pub part: Option<&'a str>,
+    body: Fields<'a>,
+    /// Names of the columns; empty where they have none.
+    names: Vec<String>,
+    pub header: Header,
+    pub decimal: Option<(Decimal, Origin)>,
+}
+
+#[derive(Clone, Debug)]
+enum Fields<'a> {
+    /// Fields of text from a row on.
+    Text(&'a Cells, usize),
+    Numbers(ArrayView2<'a, f64>),
+    /// Columns of equally many numbers or words.
+    Columns(Vec<Column<'a>>),
+}
+
+#[derive(Clone, Copy, Debug)]
+enum Column<'a> {
+    Numbers(ArrayView2<'a, f64>),
+    Words(&'a [String]),
+}
+
+/// Whether names stand above the columns.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) enum Header {
+    /// No.
+    Absent,
+    /// Yes: by a usual name, or by the format.
+    Found,
+    /// Yes, by the look of the first row.
+    Assumed,
+}
+
+impl<'a> Grid<'a> {
+    /// The grids of a file. Columns that its format keeps apart, words and vectors of one length and one outer name, are
+    /// put side by side again.
+    pub fn of(file: usize, parts: &'a [Part], decimal: Option<Decimal>) -> Vec<Self> {
+        let mut grids: Vec<Self> = Vec::new();
+        let mut grouped: Vec<usize> = Vec::new();
+        for (index, part) in parts.iter().enumerate() {
+            if grouped.contains(&index) {
+                continue;
+            }
+            let alike: Vec<usize> = (index..parts.len())
+                .filter(|&other| parts.get(other).is_some_and(|other| goes_beside(part, other)))
+                .collect();
+            if alike.len() > 1 {
+                let beside: Vec<&Part> = alike.iter().filter_map(|&other| parts.get(other)).collect();
+                grids.push(Self::beside(file, &beside));
+                grouped.extend(alike);
+                continue;
+            }
+            grids.extend(Self::single(file, part, decimal));
+        }
+        grids
+    }
+
+    fn single(file: usize, part: &'a Part, decimal: Option<Decimal>) -> Option<Self> {
+        let name = part.name.as_deref();
+        let grid = |body, width: usize| Self {
+            file,
+            part: name,
+            body,
+            names: vec![String::new(); width],
+            header: Header::Absent,
+            decimal: None,
+        };
+        Some(match &part.body {
+            Body::Record(_) => return None,
+            Body::Words(words) => grid(Fields::Columns(vec![Column::Words(words)]), 1),
+            Body::Numbers(numbers) => grid(Fields::Numbers(numbers.view()), numbers.ncols()),
+            Body::Cells(cells) => {
+                let mut grid = grid(Fields::Text(cells, 0), cells.width());
+                grid.decimal = Some(decimal.map_or_else(|| decimal_mark(cells), |wish| (wish, Origin::Setting)));
+                grid.header = grid.first_row(cells);
+                if grid.header != Header::Absent {
+                    grid.names = cells.row(0).map(String::from).collect();
+                    grid.body = Fields::Text(cells, 1);
+                }
+                grid
+            }
+        })
+    }
+
+    /// Vectors side by side, named by their parts.
+    fn beside(file: usize, parts: &[&'a Part]) -> Self {
+        let columns = parts.iter().filter_map(|part| match &part.body {
+            Body::Numbers(numbers) => Some(Column::Numbers(numbers.view())),
+            Body::Words(words) => Some(Column::Words(words)),
+            _ => None,
+        });
+        let names = parts.iter().map(|part| split_name(part).1.to_owned()).collect();
+        let part = parts.first().and_then(|part| split_name(part).0);
+        Self { file, part, body: Fields::Columns(columns.collect()), names, header: Header::Found, decimal: None }
+    }
+
+    pub fn width(&self) -> usize {
+        self.names.len()
+    }
+
+    pub fn height(&self) -> usize {
+        match &self.body {
+            Fields::Text(cells, first) => cells.height().saturating_sub(*first),
+            Fields::Numbers(numbers) => numbers.nrows(),
+            Fields::Columns(columns) => columns.first().map_or(0, |column| column.height()),
+        }
+    }
+
+    /// Whether it can only hold numbers, so that labels must come from elsewhere.
+    pub fn is_numeric(&self) -> bool {
+        matches!(self.body, Fields::Numbers(_))
+    }
+
+    pub fn names(&self) -> &[String] {
+        &self.names
+    }
+
+    pub fn name(&self, column: usize) -> &str {
+        self.names.get(column).map_or("", String::as_str)
+    }
+
+    /// Line of a row of the file, from 1; the number of the row where there are no lines.
+    pub fn line(&self, row: usize) -> usize {
+        match &self.body {
+            Fields::Text(cells, first) => cells.line(row + first),
+            _ => row + 1,
+        }
+    }
+
+    /// Line of the header, or else of the first row.
+    pub fn first_line(&self) -> usize {
+        match &self.body {
+            Fields::Text(cells, _) => cells.line(0),
+            _ => 1,
+        }
+    }
+
+    /// The text of a field; empty for numbers of a binary file.
+    pub fn word(&self, row: usize, column: usize) -> &str {
+        match &self.body {
+            Fields::Text(cells, first) => cells.field(row + first, column),
+            Fields::Numbers(_) => "",
+            Fields::Columns(columns) => match columns.get(column) {
+                Some(Column::Words(words)) => words.get(row).map_or("", String::as_str),
+                _ => "",
+            },
+        }
+    }
+
+    /// The number of a field, of whatever size.
+    pub fn number(&self, row: usize, column: usize) -> Option<f64> {
+        let plain = |matrix: &ArrayView2<'_, f64>, column| matrix.get((row, column)).copied().filter(|v| !v.is_nan());
+        match &self.body {
+            Fields::Text(cells, first) => self.parse(cells.field(row + first, column)),
+            Fields::Numbers(numbers) => plain(numbers, column),
+            Fields::Columns(columns) => match columns.get(column) {
+                Some(Column::Numbers(numbers)) => plain(numbers, 0),
+                _ => None,
+            },
+        }
+    }
+
+    fn comma(&self) -> bool {
+        self.decimal.is_some_and(|(decimal, _)| decimal == Decimal::Comma)
+    }
+
+    fn parse(&self, field: &str) -> Option<f64> {
+        if self.comma() { number_with_comma(field) } else { number(field) }
+    }
+
+    /// The number that a field must hold, NaN where it says that there is none.
+    ///
+    /// # Errors
+    /// `number-expected`, `number-range` at the place.
+    pub fn value(&self, row: usize, column: usize, place: impl FnOnce() -> Place) -> Result<f64, Error> {
+        match &self.body {
+            Fields::Text(cells, first) => {
+                let field = cells.field(row + first, column);
+                if is_missing(field) { Ok(f64::NAN) } else { expect_number(field, self.comma(), place) }
+            }
+            Fields::Columns(columns) if matches!(columns.get(column), Some(Column::Words(_))) => {
+                let word = self.word(row, column);
+                if is_missing(word) { Ok(f64::NAN) } else { expect_number(word, false, place) }
+            }
+            _ => Ok(self.number(row, column).unwrap_or(f64::NAN)),
+        }
+    }
+
+    /// The column whose name fits.
+    pub fn column(&self, fits: impl Fn(&str) -> bool) -> Option<usize> {
+        self.names.iter().position(|name| !name.is_empty() && fits(name))
+    }
+
+    /// Whether a column holds any number.
+    pub fn has_numbers(&self, column: usize) -> bool {
+        (0..self.height()).any(|row| self.number(row, column).is_some())
+    }
+
+    /// Whether a column counts the rows.
+    pub fn counts(&self, column: usize) -> bool {
+        let first = self.number(0, column).filter(|first| *first == 0.0 || *first == 1.0);
+        let follows = |row: usize| self.number(row, column) == first.map(|first| first + row as f64);
+        first.is_some() && self.height() > 2 && (0..self.height()).all(follows)
+    }
+
+    fn is_word(&self, row: usize, column: usize) -> bool {
+        let word = self.word(row, column);
+        !is_missing(word) && self.parse(word).is_none()
+    }
+
+    /// The column of labels by its content: the one in which most fields are words; of such, the one with most different
+    /// ones; of such, the first.
+    pub fn words(&self) -> Option<usize> {
+        let rows = self.height().min(SAMPLE);
+        let count = |column: usize| (0..rows).filter(|&row| self.is_word(row, column)).count();
+        // Beyond the first hundreds only numbers follow; a table on its side is not searched to its end.
+        let columns = self.width().min(crate::read::MOST_ELECTRODES);
+        let counts: Vec<usize> = (0..columns).map(count).collect();
+        let most = counts.iter().copied().max().filter(|&most| most > 0)?;
+        let mut best = None;
+        for column in (0..columns).filter(|&column| counts.get(column) == Some(&most)) {
+            let mut words: Vec<&str> = (0..rows).map(|row| self.word(row, column)).collect();
+            words.sort_unstable();
+            words.dedup();
+            if best.is_none_or(|(_, different)| words.len() > different) {
+                best = Some((column, words.len()));
+            }
+        }
+        best.map(|(column, _)| column)
+    }
+
+    /// The column of labels, by name or by content.
+    pub fn label_column(&self) -> Option<usize> {
+        self.column(is_label_name).or_else(|| self.words())
+    }
+
+    /// Whether the first row holds names: when it holds a usual name of the label column; else when it holds no number,
+    /// numbers follow, and it does not look like a spoilt row of data.
+    fn first_row(&self, cells: &'a Cells) -> Header {
+        if cells.is_headed() || cells.row(0).any(is_label_name) {
+            return Header::Found;
+        }
+        let is_number = |field: &str| self.parse(field).is_some();
+        let numbers = |row: usize| cells.row(row).any(is_number);
+        if numbers(0) || !(1..cells.height()).any(numbers) {
+            return Header::Absent;
+        }
+        let mut below = self.clone();
+        below.body = Fields::Text(cells, 1);
+        // A spoilt row of data has the label of a site, or a field that begins like a number.
+        let label = below.words().map_or("", |column| cells.field(0, column));
+        let like_number =
+            |field: &str| field.trim_start_matches(['+', '-', '.']).starts_with(|c: char| c.is_ascii_digit());
+        let site = matches!(Reading::of(&Label::new(label)).kind, Kind::Site(_));
+        let spoilt = site || cells.row(0).any(|field| is_missing(field) && !field.is_empty() || like_number(field));
+        if spoilt && !label.is_empty() { Header::Absent } else { Header::Assumed }
+    }
+}
+
+impl Column<'_> {
+    fn height(self) -> usize {
+        match self {
+            Self::Numbers(numbers) => numbers.nrows(),
+            Self::Words(words) => words.len(),
+        }
+    }
+}
+
+/// The outer and the inner name of a part.
+fn split_name(part: &Part) -> (Option<&str>, &str) {
+    match part.name.as_deref().unwrap_or_default().rsplit_once('.') {
+        Some((outer, inner)) => (Some(outer), inner),
+        None => (None, part.name.as_deref().unwrap_or_default()),
+    }
+}
+
+/// Whether two parts are vectors of one length, several of them, under one outer name.
+fn goes_beside(one: &Part, other: &Part) -> bool {
+    let length = |part: &Part| match &part.body {
+        Body::Words(words) => Some(words.len()),
+        Body::Numbers(numbers) if numbers.ncols() == 1 => Some(numbers.nrows()),
+        Body::Numbers(numbers) if numbers.nrows() == 1 => None,
+        _ => None,
+    };
+    length(one).is_some_and(|length| length > 1)
+        && length(one) == length(other)
+        && split_name(one).0 == split_name(other).0
+        && one.name.is_some()
+        && other.name.is_some()
+}
+
+/// A comma is the decimal mark where numbers have commas and none has a point.
+fn decimal_mark(cells: &Cells) -> (Decimal, Origin) {
+    if !cells.contains(',') {
+        return (Decimal::Point, Origin::Found);
+    }
+    let mut commas = false;
+    for row in 0..cells.height() {
+        for field in cells.row(row) {
+            if field.contains('.') && number(field).is_some() {
+                return (Decimal::Point, Origin::Found);
+            }
+            commas |= has_decimal_comma(field);
+        }
+    }
+    (if commas { Decimal::Comma } else { Decimal::Point }, Origin::Found)
+}

@@ -1,0 +1,207 @@
+use super::grid::{Grid, Header};
+use super::positions::{columns_choice, label_of};
+use super::{Columns, Found, MapsAre, Orientation, Wishes, label_wish};
+use crate::electrode::{Kind, Label, Reading};
+use crate::finding::{Choice, Code, Error, Finding, Origin, Place};
+use crate::map::Maps;
+use crate::read::{MOST_ELECTRODES, MOST_MAPS, is_missing};
+use ndarray::Array2;
+use std::collections::HashSet;
+
+const INPUT: &str = "maps";
+
+/// Names that are looked at to tell whether they are labels.
+const SAMPLE: usize = 600;
+
+/// Maps, and whether their table has labels of its own.
+pub(super) struct Read {
+    pub maps: Maps,
+    pub labelled: bool,
+}
+
+/// Maps of a grid: a column, a row, or a matrix of either orientation. Labels stand in a column or in the header, whichever holds more
+/// names of sites or of the electrodes known; a matrix without labels takes those of a list or a table of electrodes
+/// as long as one of its sides. Maps are named by the other side, otherwise by their number. A missing value becomes NaN.
+///
+/// # Errors
+/// `table-columns`, `shape-unmatched`, `maps-none`, `maps-too-many`, `electrodes-too-many`, `number-expected`,
+/// `number-range`.
+pub(super) fn read_maps(
+    grid: &Grid<'_>,
+    beside: &[usize],
+    known: &[Vec<Label>],
+    wishes: &Wishes,
+    found: &mut Found,
+) -> Result<Read, Error> {
+    let first = Place { line: Some(grid.first_line()), ..found.place(INPUT, grid) };
+    let none = || Error::from(Finding::new(Code::MapsNone).at(first.clone()));
+    let label = label_wish(grid, wishes, None, found)?;
+    let (columns, passed_over) = value_columns(grid, label, beside);
+    let keys: HashSet<String> = known.iter().flatten().map(Label::key).collect();
+    let (orientation, from) = orientation(grid, label, &columns, known, &keys, wishes);
+    let Some(orientation) = orientation else {
+        return Err(match known.iter().map(Vec::len).find(|&count| count > 0) {
+            None => {
+                let finding = Finding::new(Code::TableColumns).at(first);
+                finding.with("lacks", "label-column").with("width", grid.width()).into()
+            }
+            Some(count) => {
+                let finding = Finding::new(Code::ShapeUnmatched).at(first);
+                finding.with("rows", grid.height()).with("columns", columns.len()).with("labels", count).into()
+            }
+        });
+    };
+    if columns.is_empty() || grid.height() == 0 {
+        return Err(none());
+    }
+    let in_rows = orientation == Orientation::ChannelsInRows;
+    let (electrodes, count) = if in_rows { (grid.height(), columns.len()) } else { (columns.len(), grid.height()) };
+    for (code, number, most) in
+        [(Code::MapsTooMany, count, MOST_MAPS), (Code::ElectrodesTooMany, electrodes, MOST_ELECTRODES)]
+    {
+        if number > most {
+            let place = Place { line: None, ..first };
+            return Err(Finding::new(code).at(place).with("found", number).with("most", most).into());
+        }
+    }
+    let header = || columns.iter().map(|&column| grid.name(column)).collect::<Vec<_>>();
+    let has_header = grid.header != Header::Absent && header().iter().any(|name| !name.is_empty());
+    let by_order = || known.iter().find(|labels| labels.len() == electrodes && !unnamed(labels)).cloned();
+    let mut labelled = true;
+    let labels = match (in_rows, label) {
+        (true, Some(column)) => {
+            (0..electrodes).map(|row| label_of(grid, row, column, INPUT, found)).collect::<Result<_, _>>()?
+        }
+        (false, _) if has_header => header().into_iter().map(Label::new).collect(),
+        _ => {
+            labelled = false;
+            by_order().ok_or_else(|| {
+                let finding = Finding::new(Code::ShapeUnmatched).at(first.clone());
+                let labels = known.iter().map(Vec::len).max().unwrap_or(0);
+                Error::from(finding.with("rows", grid.height()).with("columns", columns.len()).with("labels", labels))
+            })?
+        }
+    };
+    let name = |index: usize| {
+        let written = match (in_rows, label) {
+            (true, _) => columns.get(index).map_or("", |&column| grid.name(column)),
+            (false, Some(column)) => grid.word(index, column),
+            (false, None) => "",
+        };
+        if written.is_empty() { format!("map {}", index + 1) } else { written.to_owned() }
+    };
+    let names: Vec<String> = (0..count).map(name).collect();
+    let lines: Vec<usize> =
+        if in_rows { (0..electrodes).map(|row| grid.line(row)).collect() } else { vec![grid.first_line(); electrodes] };
+    let mut values = Array2::from_elem((electrodes, count), f64::NAN);
+    for row in 0..grid.height() {
+        for (index, &column) in columns.iter().enumerate() {
+            let (electrode, map) = if in_rows { (row, index) } else { (index, row) };
+            let place = || Place {
+                label: labels.get(electrode).map(Label::to_string),
+                map: names.get(map).cloned(),
+                line: Some(grid.line(row)),
+                column: Some(column + 1),
+                ..found.place(INPUT, grid)
+            };
+            if let Some(value) = values.get_mut((electrode, map)) {
+                *value = grid.value(row, column, place)?;
+            }
+        }
+    }
+    let file = found.file_name(grid);
+    found.choices.push(
+        Choice::new("orientation", from, orientation.name())
+            .about(&file)
+            .options(Orientation::ALL.map(Orientation::name)),
+    );
+    if from == Origin::Assumed && !labelled {
+        let place = found.place(INPUT, grid);
+        found.notes.push(Finding::new(Code::OrientationAssumed).at(place).with("rows", grid.height()));
+    }
+    if let Some(column) = label.filter(|_| in_rows) {
+        let wished = wishes.files.get(&file).is_some_and(|wish| wish.label.is_some());
+        let from = if wished { Origin::Setting } else { Origin::Found };
+        found.choices.push(columns_choice("label", grid, column, from, found).of_file(&file));
+    }
+    if !passed_over.is_empty() {
+        let names: Vec<String> = passed_over.iter().map(|&column| super::written(grid, column)).collect();
+        found.notes.push(Finding::new(Code::ColumnsPassedOver).at(found.place(INPUT, grid)).with("columns", names));
+    }
+    let used = columns.iter().map(|&column| (column, "value")).collect();
+    found.columns = Columns { passed_over, ..Columns::new(label, used) };
+    Ok(Read { maps: Maps { labels, lines, names, values }, labelled })
+}
+
+fn unnamed(labels: &[Label]) -> bool {
+    labels.iter().all(|label| label.as_str().is_empty())
+}
+
+/// Columns that hold values, and those that hold words or count the rows.
+fn value_columns(grid: &Grid<'_>, label: Option<usize>, beside: &[usize]) -> (Vec<usize>, Vec<usize>) {
+    let others = (0..grid.width()).filter(|column| Some(*column) != label && !beside.contains(column));
+    if grid.is_numeric() {
+        return (others.collect(), Vec::new());
+    }
+    let rows = grid.height();
+    let only_words =
+        |column: usize| !grid.has_numbers(column) && (0..rows).any(|row| !is_missing(grid.word(row, column)));
+    let counting = |column: usize| {
+        let name = grid.name(column);
+        let plain = ["", "no", "nr", "no.", "#", "number", "index", "id"].iter().any(|n| name.eq_ignore_ascii_case(n));
+        plain && grid.counts(column)
+    };
+    let (values, passed_over): (Vec<usize>, Vec<usize>) = if beside.is_empty() {
+        others.partition(|&column| !only_words(column) && !counting(column))
+    } else {
+        let values: Vec<usize> = super::role::values_beside(grid, label, beside).collect();
+        others.partition(|column| values.contains(column))
+    };
+    // A table in which nothing but words was found is told by its first wrong field.
+    if values.is_empty() { (passed_over, Vec::new()) } else { (values, passed_over) }
+}
+
+/// Which way a grid lies; `None` where neither side can have labels.
+fn orientation(
+    grid: &Grid<'_>,
+    label: Option<usize>,
+    columns: &[usize],
+    known: &[Vec<Label>],
+    keys: &HashSet<String>,
+    wishes: &Wishes,
+) -> (Option<Orientation>, Origin) {
+    if let Some(wish) = wishes.orientation {
+        return (Some(wish), Origin::Setting);
+    }
+    let is_label = |name: &str| {
+        let label = Label::new(name);
+        keys.contains(&label.key()) || matches!(Reading::of(&label).kind, Kind::Site(_))
+    };
+    // Shares of names that are labels, in percent.
+    let share = |names: &mut dyn Iterator<Item = &str>| {
+        let (mut labels, mut all) = (0, 0);
+        for name in names.take(SAMPLE) {
+            all += 1;
+            labels += usize::from(is_label(name));
+        }
+        (100 * labels).checked_div(all).unwrap_or(0)
+    };
+    let above = share(&mut columns.iter().map(|&column| grid.name(column)));
+    let beside = share(&mut (0..grid.height()).filter_map(|row| Some(grid.word(row, label?))));
+    if above >= 50 && above > beside {
+        return (Some(Orientation::ChannelsInColumns), Origin::Found);
+    }
+    if label.is_some() {
+        return (Some(Orientation::ChannelsInRows), if beside >= 50 { Origin::Found } else { Origin::Assumed });
+    }
+    let fits = |side: usize| known.iter().any(|labels| labels.len() == side && !unnamed(labels));
+    let unmixing = wishes.maps_are == Some(MapsAre::Unmixing);
+    match (fits(grid.height()), fits(columns.len())) {
+        // An unmixing matrix has a row for each component.
+        (true, true) if unmixing => (Some(Orientation::ChannelsInColumns), Origin::Assumed),
+        (true, true) if grid.height() == columns.len() => (Some(Orientation::ChannelsInRows), Origin::Assumed),
+        (true, _) => (Some(Orientation::ChannelsInRows), Origin::Found),
+        (false, true) => (Some(Orientation::ChannelsInColumns), Origin::Found),
+        (false, false) => (None, Origin::Assumed),
+    }
+}

@@ -1,0 +1,648 @@
+//! Parts of files to electrodes and maps: tells files apart, finds columns, orientation, names and units. Every inference
+//! that could have gone otherwise is a [`Choice`] that a setting changes.
+#![deny(clippy::unwrap_used, clippy::expect_used, clippy::indexing_slicing)]
+
+mod channels;
+mod coordinates;
+mod grid;
+mod maps;
+mod positions;
+mod role;
+mod sequence;
+mod unmixing;
+mod wishes;
+
+pub use role::{Kind, kind_of};
+pub use sequence::Moments;
+pub use wishes::{
+    AngleUnit, AngleWishes, Baseline, ColumnName, ColumnWishes, ColumnsAre, Decimal, FileWishes, MapsAre, Orientation,
+    Polar, Role, TimeUnit, Times, Wishes,
+};
+
+use crate::electrode::{Electrode, Label, Landmark};
+use crate::finding::{Choice, Code, Error, Finding, Origin, Place, Value};
+use crate::head::LengthUnit;
+use crate::map::Maps;
+use crate::math::Vec3;
+use crate::read::{Body, Content, Encoding, Format, Record};
+use grid::{Grid, Header};
+use serde::Serialize;
+
+/// A file with its name and what was read of it.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Source {
+    /// Its name.
+    pub name: String,
+    /// What it has to be: tables that were given as electrodes or as maps.
+    pub role: Option<Role>,
+    /// What it holds.
+    pub content: Content,
+}
+
+/// Electrodes and maps with all that the files say about them.
+#[derive(Clone, Debug)]
+pub struct Understood {
+    /// Electrodes with positions in the unit of their table, or labels alone; `None` where no file has any.
+    pub electrodes: Option<Vec<Electrode>>,
+    /// The maps.
+    pub maps: Maps,
+    /// Landmarks, in the unit of the electrodes.
+    pub landmarks: Vec<(Landmark, Vec3)>,
+    /// Unit of the electrodes, by what a file declares.
+    pub declared_unit: Option<LengthUnit>,
+    /// Labels of channels that a file declares to be scalp EEG.
+    pub scalp: Vec<Label>,
+    /// Labels of channels that a file declares to be something else.
+    pub other_channels: Vec<Label>,
+    /// Labels of channels that a file declares to be bad.
+    pub bad: Vec<Label>,
+    /// How the maps belong together.
+    pub columns_are: ColumnsAre,
+    /// When the maps were.
+    pub moments: Option<Moments>,
+    /// Names of the files that hold the electrodes and the maps, where the user knows them by name.
+    pub file_names: [Option<String>; 2],
+    /// What each file, or part of one, was taken for.
+    pub files: Vec<FileFacts>,
+    /// What the user can change.
+    pub choices: Vec<Choice>,
+    /// What was inferred and what was left aside.
+    pub notes: Vec<Finding>,
+}
+
+impl Understood {
+    /// The finding with the name of the file it is about, where it is about electrodes or maps and has none.
+    pub fn name_file(&self, finding: &mut Finding) {
+        let Some(place) = finding.place.as_mut().filter(|place| place.file.is_none()) else { return };
+        let [electrodes, maps] = &self.file_names;
+        place.file = match place.input {
+            Some("electrodes") => electrodes.clone(),
+            Some("maps") => maps.clone(),
+            _ => None,
+        };
+    }
+
+    /// An error with the name of the file it is about.
+    pub fn in_file(&self, error: Error) -> Error {
+        let mut finding = error.finding().clone();
+        self.name_file(&mut finding);
+        finding.into()
+    }
+}
+
+/// What a file, or a part of one, was taken for.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct FileFacts {
+    /// Name of the file.
+    pub name: String,
+    /// Name of the part, where the file has several.
+    pub part: Option<String>,
+    /// What it is.
+    pub role: Role,
+    /// How it is written.
+    pub format: Format,
+    /// How its text is written; `null` for binary files.
+    pub encoding: Option<Encoding>,
+    /// Rows, without the header.
+    pub rows: usize,
+    /// Columns.
+    pub columns: usize,
+    /// Whether a first row names the columns.
+    pub header: bool,
+    /// Columns that mean something; those of maps only by their first and last.
+    pub used: Vec<UsedColumn>,
+    /// Names of columns that mean nothing here, or their numbers.
+    pub passed_over: Vec<String>,
+}
+
+/// A column and its meaning.
+#[derive(Clone, Debug, PartialEq, Eq, Serialize)]
+pub struct UsedColumn {
+    /// Counted from 1.
+    pub column: usize,
+    /// Its name in the header; empty where it has none.
+    pub name: String,
+    /// `label`, `x`, `y`, `z`, `polar`, `azimuth`, `radius`, `value`, `type`, `status`.
+    #[serde(rename = "as")]
+    pub meaning: &'static str,
+}
+
+/// What is found on the way.
+#[derive(Debug, Default)]
+struct Found {
+    files: Vec<FileName>,
+    notes: Vec<Finding>,
+    choices: Vec<Choice>,
+    columns: Columns,
+}
+
+#[derive(Debug)]
+struct FileName {
+    name: String,
+    /// Whether the user knows the file by this name.
+    is_given: bool,
+}
+
+/// Columns of the grid that was read last.
+#[derive(Clone, Debug, Default, PartialEq)]
+struct Columns {
+    used: Vec<(usize, &'static str)>,
+    passed_over: Vec<usize>,
+}
+
+impl Columns {
+    fn new(label: Option<usize>, others: Vec<(usize, &'static str)>) -> Self {
+        Self { used: label.map(|label| (label, "label")).into_iter().chain(others).collect(), passed_over: Vec::new() }
+    }
+}
+
+impl Found {
+    /// A file as a place.
+    fn place(&self, input: &'static str, grid: &Grid<'_>) -> Place {
+        Place { file: self.given_name(grid.file), ..Place::input(input) }
+    }
+
+    fn given_name(&self, file: usize) -> Option<String> {
+        self.files.get(file).filter(|file| file.is_given).map(|file| file.name.clone())
+    }
+
+    fn name(&self, file: usize) -> String {
+        self.files.get(file).map(|file| file.name.clone()).unwrap_or_default()
+    }
+
+    fn file_name(&self, grid: &Grid<'_>) -> String {
+        self.name(grid.file)
+    }
+}
+
+/// Makes sense of the files, in any order.
+///
+/// # Errors
+/// `maps-missing`, `files-several`, `shape-unmatched`, `table-columns`, `column-unknown`, `number-expected`,
+/// `number-range`, `electrodes-too-many`, `maps-too-many`, `maps-none`, `unmixing-singular`,
+/// `baseline-empty`.
+pub fn understand(sources: &[Source], wishes: &Wishes) -> Result<Understood, Error> {
+    let mut found = Found {
+        files: sources.iter().map(|file| FileName { name: file.name.clone(), is_given: file.role.is_none() }).collect(),
+        ..Found::default()
+    };
+    let mut grids: Vec<(Grid<'_>, Role)> = Vec::new();
+    let mut records: Vec<(usize, &Record)> = Vec::new();
+    for (file, source) in sources.iter().enumerate() {
+        let wish = wishes.files.get(&source.name);
+        found.choices.extend(source.content.choices.iter().cloned().map(|choice| choice.of_file(&source.name)));
+        let input = match source.role {
+            Some(Role::Electrodes) => "electrodes",
+            Some(_) => "maps",
+            None => "file",
+        };
+        let name = found.given_name(file);
+        found.notes.extend(source.content.notes.iter().cloned().map(|mut note| {
+            let place = note.place.take().unwrap_or_default();
+            note.at(Place { input: Some(input), file: name.clone(), ..place })
+        }));
+        let own = Grid::of(file, &source.content.parts, wish.and_then(|wish| wish.decimal));
+        let told = wish.and_then(|wish| wish.role).or(source.role);
+        grids.extend(roles(own, told, wish.and_then(|wish| wish.part.as_deref()), sources.len() == 1));
+        records.extend(source.content.parts.iter().filter_map(|part| match &part.body {
+            Body::Record(record) => Some((file, record)),
+            _ => None,
+        }));
+    }
+    let unmixing = wishes.maps_are == Some(MapsAre::Unmixing);
+    let chosen = Chosen::of(&mut grids, sources, wishes, unmixing, &mut found)?;
+    chosen.read(&grids, &records, sources, wishes, found)
+}
+
+/// Gives each grid of a file its role: by its content, unless the file's is told. What is told to be maps may hold
+/// positions too where it is the only file.
+fn roles<'a>(grids: Vec<Grid<'a>>, told: Option<Role>, part: Option<&str>, only: bool) -> Vec<(Grid<'a>, Role)> {
+    let with_role = |grid: Grid<'a>| {
+        let role = role::role_of(&grid);
+        (grid, role)
+    };
+    let mut roles: Vec<(Grid<'a>, Role)> = grids.into_iter().map(with_role).collect();
+    let Some(told) = told else {
+        return chosen_part(roles, part);
+    };
+    // Labels alone are electrodes too.
+    let fits = |role: Role| {
+        role == told
+            || (told == Role::Electrodes && role == Role::Labels)
+            || (told == Role::Maps && role == Role::ElectrodesAndMaps && only)
+    };
+    let alone = roles.len() == 1;
+    let known = roles.iter().any(|(_, role)| fits(*role));
+    let mut given = false;
+    for (grid, role) in &mut roles {
+        let takes =
+            alone || told == Role::Unused || (!known && !given && *role != Role::Labels && *role != Role::Unused);
+        let wanted = part.is_some() && grid.part == part;
+        if (takes && !fits(*role)) || wanted {
+            *role = told;
+            given = true;
+        }
+    }
+    chosen_part(roles, part)
+}
+
+/// Where one part is wanted, others like it are not.
+fn chosen_part<'a>(mut roles: Vec<(Grid<'a>, Role)>, part: Option<&str>) -> Vec<(Grid<'a>, Role)> {
+    let Some(wanted) = part else { return roles };
+    let Some(role) = roles.iter().find(|(grid, _)| grid.part == Some(wanted)).map(|(_, role)| *role) else {
+        return roles;
+    };
+    for (grid, other) in &mut roles {
+        if grid.part != Some(wanted) && *other == role {
+            *other = Role::Unused;
+        }
+    }
+    roles
+}
+
+/// The grids that are read, by their numbers.
+#[derive(Debug, Default)]
+struct Chosen {
+    maps: usize,
+    electrodes: Option<usize>,
+    labels: Vec<usize>,
+    channels: Option<usize>,
+    sphering: Option<usize>,
+    times: Option<usize>,
+}
+
+impl Chosen {
+    fn of(
+        grids: &mut [(Grid<'_>, Role)],
+        sources: &[Source],
+        wishes: &Wishes,
+        unmixing: bool,
+        found: &mut Found,
+    ) -> Result<Self, Error> {
+        let with = |grids: &[(Grid<'_>, Role)], roles: &[Role]| -> Vec<usize> {
+            let numbered = grids.iter().enumerate();
+            numbered.filter(|(_, (_, role))| roles.contains(role)).map(|(index, _)| index).collect()
+        };
+        // Values beside positions are maps unless there are maps.
+        if !with(grids, &[Role::Maps]).is_empty() {
+            for (_, role) in grids.iter_mut().filter(|(_, role)| *role == Role::ElectrodesAndMaps) {
+                *role = Role::Electrodes;
+            }
+        }
+        let counts: Vec<usize> = with(grids, &[Role::Electrodes, Role::ElectrodesAndMaps, Role::Labels])
+            .into_iter()
+            .filter_map(|index| grids.get(index).map(|(grid, _)| grid.height()))
+            .collect();
+        if unmixing && with(grids, &[Role::Sphering]).is_empty() {
+            take_for_sphering(grids);
+        }
+        let candidates = with(grids, &[Role::Maps, Role::ElectrodesAndMaps]);
+        let likely = |index: &usize| {
+            let Some((grid, _)) = grids.get(*index) else { return 0 };
+            let part = grid.part.unwrap_or_default().to_ascii_lowercase();
+            let named = ["map", "mixing", "pattern", "topograph", "component", "a"].iter();
+            let named = named.filter(|name| part == **name || (name.len() > 1 && part.contains(**name))).count();
+            usize::from(named > 0) + 2 * usize::from(counts.contains(&grid.height()) || counts.contains(&grid.width()))
+        };
+        let Some(maps) = one_of(&candidates, grids, "maps", likely, found)? else {
+            let mut finding = Finding::new(Code::MapsMissing);
+            if let Some(source) = sources.first() {
+                finding = finding
+                    .at(Place { file: found.given_name(0), ..Place::input("maps") })
+                    .with("file", source.name.as_str());
+            }
+            return Err(finding.into());
+        };
+        let candidates = with(grids, &[Role::Electrodes, Role::ElectrodesAndMaps]);
+        let electrodes = one_of(&candidates, grids, "electrodes", |_| 0, found)?;
+        let candidates = with(grids, &[Role::Channels]);
+        let channels = one_of(&candidates, grids, "channels", |_| 0, found)?;
+        let candidates = with(grids, &[Role::Sphering]);
+        let sphering = one_of(&candidates, grids, "sphering", |_| 0, found)?.filter(|_| unmixing);
+        let times = with(grids, &[Role::Times]).first().copied();
+        let labels = with(grids, &[Role::Labels]);
+        let kept: Vec<usize> = [Some(maps), electrodes, channels, sphering, times]
+            .into_iter()
+            .flatten()
+            .chain(labels.iter().copied())
+            .collect();
+        for (index, (grid, role)) in grids.iter_mut().enumerate() {
+            if !kept.contains(&index) {
+                let told = wishes.files.get(&found.file_name(grid)).is_some_and(|wish| wish.role == Some(Role::Unused));
+                if *role != Role::Unused && !told {
+                    let mut unused = Finding::new(Code::PartUnused).at(found.place("file", grid));
+                    unused = unused.with("role", role.name());
+                    found.notes.push(unused.with("part", grid.part.unwrap_or_default()));
+                }
+                *role = Role::Unused;
+            }
+        }
+        Ok(Self { maps, electrodes, labels, channels, sphering, times })
+    }
+
+    fn read(
+        self,
+        grids: &[(Grid<'_>, Role)],
+        records: &[(usize, &Record)],
+        sources: &[Source],
+        wishes: &Wishes,
+        mut found: Found,
+    ) -> Result<Understood, Error> {
+        let grid = |index: usize| grids.get(index).map(|(grid, _)| grid);
+        let lost = || Error::from(Finding::new(Code::MapsMissing));
+        let maps_grid = grid(self.maps).ok_or_else(lost)?;
+        let mut columns: Vec<(usize, Columns)> = Vec::new();
+
+        let mut electrodes = None;
+        if let Some(electrode_grid) = self.electrodes.and_then(grid) {
+            let label = label_wish(electrode_grid, wishes, wishes.columns.label.as_ref(), &found)?;
+            let read = positions::read_electrodes(electrode_grid, label, &wishes.columns, &wishes.angles, &mut found)?;
+            columns.push((self.electrodes.unwrap_or_default(), std::mem::take(&mut found.columns)));
+            electrodes = Some((read, label.is_some(), electrode_grid));
+        }
+        let lists: Vec<Vec<Label>> = self
+            .labels
+            .iter()
+            .filter_map(|&index| grid(index))
+            .map(|grid| labels_of(grid, wishes, &found))
+            .collect::<Result<_, _>>()?;
+        for (&index, _) in self.labels.iter().zip(&lists) {
+            let label = grid(index).and_then(Grid::label_column);
+            columns.push((index, Columns::new(label, Vec::new())));
+        }
+        // Positions without labels take those of a list as long as they are.
+        let mut by_order = Vec::new();
+        if let Some((read, false, electrode_grid)) = &mut electrodes
+            && let Some(list) = lists.iter().find(|list| list.len() == read.len())
+        {
+            read.iter_mut().zip(list).for_each(|(electrode, label)| electrode.label = label.clone());
+            by_order.push(electrode_grid.file);
+        }
+        let known: Vec<Vec<Label>> = lists
+            .iter()
+            .cloned()
+            .chain(electrodes.iter().map(|(read, _, _)| read.iter().map(|e| e.label.clone()).collect()))
+            .collect();
+        let beside = if self.electrodes == Some(self.maps) {
+            columns
+                .last()
+                .map(|(_, columns)| columns.used.iter().map(|(column, _)| *column).collect())
+                .unwrap_or_default()
+        } else {
+            // Positions that other ones replace.
+            Some(maps_grid).filter(|grid| !grid.is_numeric()).and_then(positions::named).unwrap_or_default()
+        };
+        let read = maps::read_maps(maps_grid, &beside, &known, wishes, &mut found)?;
+        let maps_columns = std::mem::take(&mut found.columns);
+        match columns.iter_mut().find(|(index, _)| *index == self.maps) {
+            Some((_, known)) => {
+                known.used.extend(maps_columns.used.into_iter().filter(|(_, meaning)| *meaning == "value"));
+                known.passed_over = maps_columns.passed_over;
+            }
+            None => columns.push((self.maps, maps_columns)),
+        }
+        let maps::Read { mut maps, labelled } = read;
+        if let Some((read, false, electrode_grid)) = &mut electrodes
+            && read.iter().all(|electrode| electrode.label.as_str().is_empty())
+        {
+            if !labelled || maps.labels.len() != read.len() {
+                let finding = Finding::new(Code::ShapeUnmatched).at(found.place("electrodes", electrode_grid));
+                let finding = finding.with("rows", read.len()).with("columns", electrode_grid.width());
+                return Err(finding.with("labels", maps.labels.len()).into());
+            }
+            read.iter_mut().zip(&maps.labels).for_each(|(electrode, label)| electrode.label = label.clone());
+            by_order.push(electrode_grid.file);
+        }
+        if !labelled {
+            by_order.push(maps_grid.file);
+        }
+        for file in by_order {
+            let place = Place { file: found.given_name(file), ..Place::input("maps") };
+            found.notes.push(Finding::new(Code::LabelsByOrder).at(place).with("count", maps.labels.len()));
+        }
+        if wishes.maps_are == Some(MapsAre::Unmixing) {
+            let sphering = self.sphering.and_then(grid);
+            maps = unmixing::mixing(maps, maps_grid, sphering, &mut found)?;
+        }
+        found.choices.push(
+            Choice::new(
+                "mapsAre",
+                if wishes.maps_are.is_some() { Origin::Setting } else { Origin::Assumed },
+                wishes.maps_are.unwrap_or(MapsAre::Maps).name(),
+            )
+            .about(&found.file_name(maps_grid))
+            .options(MapsAre::ALL.map(MapsAre::name)),
+        );
+        let times = self.times.and_then(grid);
+        let (columns_are, moments) = sequence::sequence(&mut maps, maps_grid, times, wishes, &mut found)?;
+
+        let declared = match self.channels.and_then(grid) {
+            Some(grid) => {
+                let declared = channels::read_channels(grid, &mut found)?;
+                columns.push((self.channels.unwrap_or_default(), std::mem::take(&mut found.columns)));
+                declared
+            }
+            None => channels::Declared::default(),
+        };
+        let described = coordinates::read_coordinates(records, &mut found);
+        let electrodes = electrodes.map(|(read, _, _)| read).or_else(|| {
+            // A list of labels alone names the electrodes, if it is not the list of a matrix.
+            let list = lists.into_iter().next().filter(|_| labelled)?;
+            let line =
+                |row: usize| self.labels.first().and_then(|&index| grid(index)).map_or(row + 1, |grid| grid.line(row));
+            let numbered = list.into_iter().enumerate();
+            Some(numbered.map(|(row, label)| Electrode { label, position: None, line: line(row) }).collect())
+        });
+        let electrode_grid = self.electrodes.or(self.labels.first().copied()).and_then(grid);
+        let file_names = [electrode_grid, Some(maps_grid)].map(|grid| found.given_name(grid?.file));
+        let files = facts(grids, records, sources, &columns, wishes, &mut found);
+        note_details(grids, &mut found);
+        Ok(Understood {
+            electrodes,
+            maps,
+            landmarks: described.landmarks,
+            declared_unit: described.unit,
+            scalp: declared.scalp,
+            other_channels: declared.other,
+            bad: declared.bad,
+            columns_are,
+            moments,
+            file_names,
+            files,
+            choices: found.choices,
+            notes: found.notes,
+        })
+    }
+}
+
+/// With an unmixing matrix of components × channels, a square matrix of channels × channels is its sphering matrix.
+fn take_for_sphering(grids: &mut [(Grid<'_>, Role)]) {
+    let matrices: Vec<(usize, usize, usize)> = grids
+        .iter()
+        .enumerate()
+        .filter(|(_, (grid, role))| *role == Role::Maps && grid.is_numeric())
+        .map(|(index, (grid, _))| (index, grid.height(), grid.width()))
+        .collect();
+    let [(first, rows, columns), (second, more_rows, more_columns)] = matrices.as_slice() else { return };
+    let sphering = match (rows == columns, more_rows == more_columns) {
+        (true, false) if more_rows == rows || more_columns == rows => *first,
+        (false, true) if rows == more_rows || columns == more_rows => *second,
+        _ => return,
+    };
+    if let Some((_, role)) = grids.get_mut(sphering) {
+        *role = Role::Sphering;
+    }
+}
+
+/// One of several grids for a purpose: of one file the likeliest, which is a choice; of several files none.
+fn one_of(
+    candidates: &[usize],
+    grids: &[(Grid<'_>, Role)],
+    purpose: &'static str,
+    likely: impl Fn(&usize) -> usize,
+    found: &mut Found,
+) -> Result<Option<usize>, Error> {
+    let grid = |index: &usize| grids.get(*index).map(|(grid, _)| grid);
+    let mut files: Vec<usize> = candidates.iter().filter_map(|index| Some(grid(index)?.file)).collect();
+    files.dedup();
+    if files.len() > 1 {
+        let names: Vec<String> = files.iter().map(|&file| found.name(file)).collect();
+        let place = Place { file: found.given_name(*files.last().unwrap_or(&0)), ..Place::default() };
+        return Err(Finding::new(Code::FilesSeveral).at(place).with("role", purpose).with("files", names).into());
+    }
+    let mut best: Option<usize> = None;
+    for candidate in candidates {
+        if best.is_none_or(|best| likely(candidate) > likely(&best)) {
+            best = Some(*candidate);
+        }
+    }
+    if let (Some(chosen), true) = (best.as_ref().and_then(grid), candidates.len() > 1) {
+        let parts = candidates.iter().filter_map(|index| grid(index)?.part).map(String::from);
+        let name = found.file_name(chosen);
+        let choice = Choice::new("part", Origin::Assumed, chosen.part.unwrap_or_default()).options(parts);
+        found.choices.push(choice.of_file(&name));
+    }
+    Ok(best)
+}
+
+/// The label column of a grid: by setting, by name, or by content.
+fn label_wish(
+    grid: &Grid<'_>,
+    wishes: &Wishes,
+    general: Option<&ColumnName>,
+    found: &Found,
+) -> Result<Option<usize>, Error> {
+    let own = wishes.files.get(&found.file_name(grid)).and_then(|wish| wish.label.as_ref());
+    match own.or(general) {
+        Some(name) => positions::column(grid, name, found).map(Some),
+        None if grid.is_numeric() => Ok(None),
+        None => Ok(grid.label_column()),
+    }
+}
+
+fn labels_of(grid: &Grid<'_>, wishes: &Wishes, found: &Found) -> Result<Vec<Label>, Error> {
+    let column = label_wish(grid, wishes, None, found)?.unwrap_or(0);
+    (0..grid.height()).map(|row| positions::label_of(grid, row, column, "electrodes", found)).collect()
+}
+
+/// What each file was taken for.
+fn facts(
+    grids: &[(Grid<'_>, Role)],
+    records: &[(usize, &Record)],
+    sources: &[Source],
+    columns: &[(usize, Columns)],
+    wishes: &Wishes,
+    found: &mut Found,
+) -> Vec<FileFacts> {
+    let mut facts = Vec::new();
+    for (file, source) in sources.iter().enumerate() {
+        let fact = |part: Option<&str>, role: Role, rows: usize, width: usize| FileFacts {
+            name: source.name.clone(),
+            part: part.filter(|_| source.content.parts.len() > 1).map(String::from),
+            role,
+            format: source.content.format,
+            encoding: source.content.encoding,
+            rows,
+            columns: width,
+            header: false,
+            used: Vec::new(),
+            passed_over: Vec::new(),
+        };
+        let mut main = None;
+        for (index, (grid, role)) in grids.iter().enumerate().filter(|(_, (grid, _))| grid.file == file) {
+            let mut fact = fact(grid.part, *role, grid.height(), grid.width());
+            fact.header = grid.header != Header::Absent;
+            if let Some((_, columns)) = columns.iter().find(|(known, _)| *known == index) {
+                fact.used = used_columns(grid, columns);
+                fact.passed_over = columns.passed_over.iter().map(|&column| written(grid, column)).collect();
+            }
+            main = main.or(Some(*role).filter(|role| *role != Role::Unused));
+            facts.push(fact);
+        }
+        for (_, record) in records.iter().filter(|(own, _)| *own == file) {
+            let role = role::role_of_record(record);
+            main = main.or(Some(role).filter(|role| *role != Role::Unused));
+            facts.push(fact(None, role, record.len(), 2));
+        }
+        let told = wishes.files.get(&source.name).is_some_and(|wish| wish.role.is_some());
+        let from = if told { Origin::Setting } else { Origin::Found };
+        let role = main.unwrap_or(Role::Unused);
+        if source.role.is_none() {
+            found
+                .choices
+                .push(Choice::new("role", from, role.name()).of_file(&source.name).options(Role::ALL.map(Role::name)));
+        }
+        if role == Role::Unused && !told {
+            let place = Place { file: found.given_name(file), ..Place::input("file") };
+            found.notes.push(Finding::new(Code::FileUnused).at(place).with("file", source.name.as_str()));
+        }
+    }
+    facts
+}
+
+/// Name of a column, or its number.
+fn written(grid: &Grid<'_>, column: usize) -> String {
+    match grid.name(column) {
+        "" => (column + 1).to_string(),
+        name => name.to_owned(),
+    }
+}
+
+/// Columns with their meaning; of those that hold values only the first and the last.
+fn used_columns(grid: &Grid<'_>, columns: &Columns) -> Vec<UsedColumn> {
+    let values: Vec<usize> = columns.used.iter().filter(|(_, meaning)| *meaning == "value").map(|(c, _)| *c).collect();
+    let shown = |column: usize, meaning: &str| {
+        meaning != "value" || values.first() == Some(&column) || values.last() == Some(&column)
+    };
+    let used = columns.used.iter().filter(|(column, meaning)| shown(*column, meaning));
+    used.map(|&(column, meaning)| UsedColumn { column: column + 1, name: grid.name(column).to_owned(), meaning })
+        .collect()
+}
+
+/// Notes and choices about how numbers and names were read.
+fn note_details(grids: &[(Grid<'_>, Role)], found: &mut Found) {
+    for (grid, role) in grids.iter().filter(|(_, role)| *role != Role::Unused) {
+        let input = if *role == Role::Electrodes { "electrodes" } else { "maps" };
+        let place = Place { line: Some(grid.first_line()), ..found.place(input, grid) };
+        if grid.header == Header::Assumed {
+            found.notes.push(Finding::new(Code::HeaderAssumed).at(place.clone()));
+        }
+        if let Some((decimal, from)) = grid.decimal {
+            let name = found.file_name(grid);
+            let choice = Choice::new("decimal", from, decimal.name()).of_file(&name);
+            found.choices.push(choice.options([Decimal::Point, Decimal::Comma].map(Decimal::name)));
+            if decimal == Decimal::Comma && from == Origin::Found {
+                found.notes.push(Finding::new(Code::DecimalComma).at(Place { line: None, ..place }));
+            }
+        }
+    }
+    let latin = found.choices.iter().filter(|c| c.setting == "encoding" && c.from == Origin::Assumed);
+    let latin: Vec<Finding> = latin
+        .filter_map(|choice| {
+            let file = choice.file.clone().filter(|name| found.files.iter().any(|f| f.is_given && f.name == *name));
+            let value = matches!(&choice.value, Value::Text(_)).then_some("latin-1")?;
+            Some(Finding::new(Code::EncodingAssumed).at(Place { file, ..Place::input("file") }).with("encoding", value))
+        })
+        .collect();
+    found.notes.extend(latin);
+}
