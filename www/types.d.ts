@@ -59,13 +59,79 @@ interface EngineSettings {
   /** Standard deviation of each map's activation, by the number of the map. */
   activationSd?: (number | null)[];
   assess?: string[];
+  /** What is said about single files, by their names. */
+  files?: Record<string, FileSettings>;
+  units?: "m" | "cm" | "mm" | null;
+  columns?: Record<string, string | number | null>;
+  angles?: { polar?: string | null; unit?: string | null };
+  orientation?: string | null;
+  mapsAre?: string | null;
+  columnsAre?: string | null;
+  times?: { start: number; step: number; unit?: string } | null;
+  baseline?: { from: number; to: number } | null;
+}
+
+interface FileSettings {
+  role?: string | null;
+  part?: string | null;
+  encoding?: string | null;
+  delimiter?: string | null;
+  decimal?: string | null;
+  label?: string | number | null;
+}
+
+/** One inference, which a setting changes: `path` has its keys from the outside in. */
+interface Choice {
+  setting: string;
+  path: string[];
+  file: string | null;
+  value: ChoiceValue;
+  options: { value: ChoiceValue; label: string }[];
+  from: "setting" | "found" | "declared" | "assumed";
+  sentence: string;
+}
+
+type ChoiceValue = string | number | boolean;
+
+/** What was made of the files. */
+interface Understood {
+  files: UnderstoodFile[];
+  choices: Choice[];
+  columns_are: string;
+  times: { times: number[]; unit: string } | null;
+  labels: UnderstoodLabels;
+}
+
+interface UnderstoodFile {
+  name: string;
+  part: string | null;
+  role: string;
+  format: string;
+  encoding: string | null;
+  rows: number;
+  columns: number;
+  header: boolean;
+  used: { column: number; name: string; as: string }[];
+  passed_over: string[];
+}
+
+interface UnderstoodLabels {
+  matched: number;
+  renamed: { from: string; to: string }[];
+  without_value: string[];
+  without_position: string[];
+  not_scalp: string[];
+  interpolated: string[];
+  reference: string | null;
 }
 
 type Polarity = "arbitrary" | "declared";
 
+/** Electrodes and maps, or files that are told apart by their content. */
 interface EngineRequest {
   electrodes?: InwardContent;
-  maps: InwardContent;
+  maps?: InwardContent;
+  files?: { name: string; content: InwardContent }[];
   settings?: EngineSettings;
 }
 
@@ -126,6 +192,7 @@ interface InwardReport {
   electrodes: { label: string; position_mm: number[]; used: boolean }[];
   maps: ReportMap[];
   notes: ReportNote[];
+  understood: Understood;
 }
 
 /** One row of the numbers table; the engine has made text of every number. */
@@ -219,6 +286,7 @@ interface GlueStudy {
   head(): ReportHead;
   electrodes(): object[];
   notes(): ReportNote[];
+  understood(): Understood;
   preamble(): InwardReport;
   fit(index: number): ReportMap;
   /** Fits from `first` on for about so long, a few maps at least. */
@@ -251,6 +319,7 @@ interface Study {
   readonly head: ReportHead;
   readonly electrodes: object[];
   readonly notes: ReportNote[];
+  readonly understood: Understood;
   readonly count: number;
   fit(index: number): ReportMap;
   assess(index: number, what: string[]): object;

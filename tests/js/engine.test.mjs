@@ -45,7 +45,7 @@ function assertPlain(value, path) {
 }
 
 const KEYS = {
-  report: "electrodes format head inputs maps notes program settings version",
+  report: "electrodes format head inputs maps notes program settings understood version",
   program: "build name version",
   input: "name sha256",
   head: "axes centre_is_fitted centre_mm fit_max_mm fit_rms_mm name radius_is_fitted radius_mm shells unusual",
@@ -58,6 +58,10 @@ const KEYS = {
   failed: "error name",
   error: "code hint message where",
   note: "code message severity values where",
+  understood: "choices columns_are files labels times",
+  understoodFile: "columns encoding format header name part passed_over role rows used",
+  choice: "file from options path sentence setting value",
+  labels: "interpolated matched not_scalp reference renamed without_position without_value",
   place: "byte column file input label line map",
 };
 
@@ -98,6 +102,14 @@ function assertReport(report) {
     assert.match(note.message, /\.$/);
     if (note.where !== null) assertKeys(note.where, "place");
   }
+  assertKeys(report.understood, "understood");
+  report.understood.files.forEach((file) => assertKeys(file, "understoodFile"));
+  for (const choice of report.understood.choices) {
+    assertKeys(choice, "choice");
+    assert.match(choice.sentence, /\.$/);
+    assert.match(choice.from, /^(setting|found|declared|assumed)$/);
+  }
+  assertKeys(report.understood.labels, "labels");
   // As text: JSON does not know the sign of zero.
   assert.equal(JSON.stringify(JSON.parse(JSON.stringify(report))), JSON.stringify(report));
   assert.deepEqual(structuredClone(report), report);
@@ -130,6 +142,33 @@ test("electrodes left out are standard positions, an empty text is an error", ()
 test("bytes and text give the same report", () => {
   const bytes = engine.analyse({ electrodes: new Uint8Array(Buffer.from(electrodes)), maps: new Uint8Array(Buffer.from(maps)) });
   assert.deepEqual(bytes, engine.analyse({ electrodes, maps }));
+});
+
+test("files are told apart by content, and choices of a report change what is understood", () => {
+  const paired = engine.analyse({ electrodes, maps });
+  const files = [
+    { name: "b.txt", content: new Uint8Array(Buffer.from(maps)) },
+    { name: "a.txt", content: electrodes },
+  ];
+  const report = engine.analyse({ files });
+  assertReport(report);
+  assert.deepEqual(report.maps, paired.maps);
+  assert.deepEqual(report.understood.files.map(({ name, role }) => [name, role]), [["b.txt", "maps"], ["a.txt", "electrodes"]]);
+  const study = engine.open({ files });
+  const choice = study.understood.choices.find(({ setting }) => setting === "columns.x");
+  assert.equal(choice.options.length, 4);
+  const settings = { [choice.path[0]]: { [choice.path[1]]: 3, y: "x" } };
+  const changed = study.with(settings);
+  assert.notDeepEqual(changed.fit(0), study.fit(0));
+  assert.deepEqual(changed.fit(0), engine.open({ files, settings }).fit(0));
+  const wrong = [{ name: "x.csv", content: "a,b\n1" }, files[1]];
+  const error = thrown(() => engine.analyse({ files: wrong }));
+  assert.equal(error.where.file, "x.csv");
+  for (const request of [{ files, maps }, { files: [{ name: 1, content: maps }] }, { files: { maps } }, { files: [{ name: "a", content: maps, kind: "" }] }]) {
+    assert.equal(thrown(() => engine.analyse(request)).code, "settings-unknown");
+  }
+  assert.equal(thrown(() => engine.analyse({ files: [] })).code, "maps-missing");
+  assert.equal(thrown(() => engine.analyse({ files: [files[0], files[0]] })).code, "settings-unknown");
 });
 
 test("open, fit and close say the same as analyse", () => {

@@ -19,6 +19,7 @@ mod program;
 mod series;
 mod session;
 mod surroundings;
+mod tables;
 mod variant;
 
 pub use bitmap::Bitmap;
@@ -38,6 +39,7 @@ pub use place::{data, dist_file, example, sample, samples, screenshot_file, test
 pub use series::PlainSeries;
 pub use session::{CONTROL, Element, Session, TAB};
 pub use surroundings::Surroundings;
+pub use tables::{electrodes_and_maps, understood};
 pub use variant::Variant;
 
 /// Text that went wrong on the way to a browser, a driver or Node.

@@ -2,10 +2,11 @@
 use inward_core::electrode::Label;
 use inward_core::head::{LengthUnit, ShellSpec};
 use inward_core::placement::{Wishes, place};
-use inward_core::read::{Format, mat, npy, read_electrodes, read_maps, signature, zip};
+use inward_core::read::{Encoding, mat};
 use inward_core::report::{ErrorReport, HeadSettings, Note, hint};
+use inward_core::understand::{Baseline, ColumnName, ColumnWishes, ColumnsAre, FileWishes, MapsAre, Times};
 use inward_core::{Code, Error, MapReport, Report, Request, Settings, Study, Vec3, analyse};
-use inward_tests::{Draw, Electrodes, example, sample};
+use inward_tests::{Draw, Electrodes, electrodes_and_maps, example, sample};
 use std::collections::BTreeSet;
 
 fn electrodes() -> String {
@@ -57,13 +58,21 @@ fn moved(change: impl Fn(usize, Vec3) -> Vec3) -> String {
 
 /// The error of a binary file.
 fn refused(file: &[u8]) -> ErrorReport {
-    let outcome = match signature::container(file) {
-        Err(error) => return (&error).into(),
-        Ok(Some(Format::Npy)) => npy::read(file).err(),
-        Ok(Some(Format::Mat)) => mat::read(file).err(),
-        _ => zip::read(file).err(),
-    };
-    (&outcome.expect("an error")).into()
+    (&run(None, file, plain()).expect_err("an error")).into()
+}
+
+/// Files by name.
+fn files(given: &[(&str, &[u8])], settings: Settings) -> Result<Report, Error> {
+    analyse(&Request { files: given.to_vec(), settings, ..Request::default() })
+}
+
+fn of_file(name: &str, wish: FileWishes) -> Settings {
+    Settings { files: [(name.to_owned(), wish)].into(), ..plain() }
+}
+
+/// The values of a table without labels and names, a line for each electrode.
+fn bare(table: &str) -> String {
+    table.lines().skip(1).map(|line| line.split_once('\t').unwrap().1.to_owned() + "\n").collect()
 }
 
 /// A table with labels that tell nothing.
@@ -109,7 +118,7 @@ fn errors() -> Vec<(&'static str, ErrorReport)> {
         ("input-empty", error(Some(&e), " \n\t\r\n", plain())),
         ("input-empty", error(Some(""), &m, plain())),
         ("input-too-large", error(Some(&e), &"a 1\n".repeat((64 << 18) + 1), plain())),
-        ("table-columns", error(Some(&e), "1 2\n3 4\n", plain())),
+        ("table-columns", error(None, "1 2\n3 4\n", plain())),
         ("table-columns", error(Some("label\tx\ty\nA\t1\t2\nB\t3\t4\n"), &m, plain())),
         ("table-columns", error(Some(&e), &with_line(&m, 4, |line| line.replacen("AF3", "", 1)), plain())),
         ("table-ragged", error(Some(&e), &with_line(&m, 4, |line| format!("{line}\t7")), plain())),
@@ -211,9 +220,45 @@ fn errors() -> Vec<(&'static str, ErrorReport)> {
     }
     let mut bytes = m.clone().into_bytes();
     bytes[40] = 0xff;
-    all.push(("input-encoding", (&run(None, &bytes, plain()).unwrap_err()).into()));
-    let utf16: Vec<u8> = std::iter::once(0xfeff).chain(m.encode_utf16()).flat_map(u16::to_le_bytes).collect();
+    let utf8 = of_file("maps", FileWishes { encoding: Some(Encoding::Utf8), ..FileWishes::default() });
+    all.push(("input-encoding", (&run(None, &bytes, utf8).unwrap_err()).into()));
+    let mut utf16: Vec<u8> = std::iter::once(0xfeff).chain(m.encode_utf16()).flat_map(u16::to_le_bytes).collect();
+    utf16.push(0);
     all.push(("input-encoding", (&run(None, &utf16, plain()).unwrap_err()).into()));
+    let refused_files = |given: &[(&str, &[u8])], settings| (&files(given, settings).expect_err("an error")).into();
+    let (eb, mb) = (e.as_bytes(), m.as_bytes());
+    let matrix = bare(&m);
+    let short: String = matrix.lines().take(30).map(|line| format!("{line}\n")).collect();
+    let unmixing = || Settings { maps_are: Some(MapsAre::Unmixing), ..plain() };
+    let gaps = with_line(&m, 4, |line| format!("{}\tn/a", line.rsplit_once('\t').unwrap().0));
+    let late = Settings {
+        times: Some(Times { start: 0.0, step: 2.0, unit: Default::default() }),
+        baseline: Some(Baseline { from: -100.0, to: -50.0 }),
+        ..plain()
+    };
+    all.extend([
+        ("table-large", error(Some(&e), &"Cz 1\n".repeat(70_000), plain())),
+        ("table-large", error(Some(&e), &"Cz,".repeat(70_000), plain())),
+        ("json-syntax", error(Some(&e), "[[1, 2],\n[3, }", plain())),
+        ("json-syntax", error(Some(&e), "{\"maps\": [[1, 2],\n[3, 4]", plain())),
+        ("json-content", error(Some(&e), "[1, [2]]", plain())),
+        ("json-content", error(Some(&e), &("[".repeat(900) + "1" + &"]".repeat(900)), plain())),
+        ("maps-missing", refused_files(&[("a.tsv", eb)], plain())),
+        ("files-several", refused_files(&[("a.tsv", mb), ("b.tsv", eb), ("c.tsv", mb)], plain())),
+        ("files-several", refused_files(&[("a.tsv", mb), ("b.tsv", eb), ("c.tsv", eb)], plain())),
+        ("shape-unmatched", error(Some(&e), &short, plain())),
+        (
+            "column-unknown",
+            error(
+                Some(&e),
+                &m,
+                Settings { columns: ColumnWishes { x: Some(ColumnName::Number(9)), ..Default::default() }, ..plain() },
+            ),
+        ),
+        ("unmixing-singular", error(Some(&e), &gaps, unmixing())),
+        ("unmixing-singular", error(Some(&e), &m.replace(|c: char| ('1'..='9').contains(&c), "0"), unmixing())),
+        ("baseline-empty", error(Some(&e), &m, late)),
+    ]);
     let study = Study::open(&Request { electrodes: None, maps: m.as_bytes(), settings: plain(), ..Request::default() })
         .unwrap();
     for (code, name) in [
@@ -395,10 +440,63 @@ fn every_note_is_given_when_it_applies_and_not_otherwise() {
         assert!(!usual.contains(&(code, severity)), "{code}");
         met.insert(code);
     }
+    let (eb, mb) = (e.as_bytes(), m.as_bytes());
+    let latin: Vec<u8> = m.replacen("swell", "d\u{fc}nung", 1).chars().map(|c| c as u8).collect();
+    let comma = m.replace('.', ",");
+    let titled = format!("Recorded on a Tuesday\nby the keeper\n{m}");
+    let wordy: String = m.lines().map(|line| format!("{line}\tnear\n")).collect();
+    let matrix = bare(&m);
+    let square: String = {
+        let line = |row: usize| (0..70).map(|k| format!("{} ", (row * 7 + k * k) % 13)).collect::<String>() + "\n";
+        (0..70).map(line).collect()
+    };
+    let angles: String = std::iter::once("label\tphi\ttheta\n".to_owned())
+        .chain(e.lines().skip(1).map(|line| {
+            let row: Vec<&str> = line.split('\t').collect();
+            let [x, y, z] = [1, 2, 3].map(|k| row[k].parse::<f64>().unwrap());
+            format!("{}\t{}\t{}\n", row[0], y.atan2(x).to_degrees(), x.hypot(y).atan2(z - 42.7).to_degrees())
+        }))
+        .collect();
+    let moments = Settings {
+        times: Some(Times { start: -2.0, step: 2.0, unit: Default::default() }),
+        baseline: Some(Baseline { from: -2.0, to: 0.0 }),
+        columns_are: Some(ColumnsAre::TimePoints),
+        ..plain()
+    };
+    let unmixing = Settings { maps_are: Some(MapsAre::Unmixing), ..plain() };
+    let sampling: &[u8] = b"{\"SamplingFrequency\": 256, \"note\": \"calm\"}";
+    let several = format!(
+        "{{\"labels\": {:?}, \"maps\": [{}], \"other\": [[1, 2], [3, 4]]}}",
+        m.lines().skip(1).map(|line| line.split('\t').next().unwrap()).collect::<Vec<_>>(),
+        matrix.lines().map(|line| format!("[{}]", line.replace('\t', ","))).collect::<Vec<_>>().join(",")
+    );
+    type Case<'a> = (&'a str, &'a str, Vec<(&'a str, &'a [u8])>, Settings);
+    let of_files: Vec<Case> = vec![
+        ("encoding-assumed", "warning", vec![("e", eb), ("m", &latin)], plain()),
+        ("decimal-comma", "info", vec![("m", comma.as_bytes()), ("e", eb)], plain()),
+        ("title-passed-over", "info", vec![("m", titled.as_bytes()), ("e", eb)], plain()),
+        ("columns-passed-over", "info", vec![("m", wordy.as_bytes()), ("e", eb)], plain()),
+        ("labels-by-order", "info", vec![("m", matrix.as_bytes()), ("e", eb)], plain()),
+        ("orientation-assumed", "warning", vec![("m", square.as_bytes()), ("e", eb)], plain()),
+        ("angles-read", "info", vec![("m", mb), ("e", angles.as_bytes())], plain()),
+        ("file-unused", "warning", vec![("m", mb), ("e", eb), ("s", sampling)], plain()),
+        ("part-unused", "info", vec![("m", several.as_bytes()), ("e", eb)], plain()),
+        ("unmixing-inverted", "info", vec![("m", mb), ("e", eb)], unmixing.clone()),
+        ("sphering-absent", "warning", vec![("m", mb), ("e", eb)], unmixing),
+        ("baseline-subtracted", "info", vec![("m", mb), ("e", eb)], moments),
+    ];
+    for (code, severity, given, settings) in of_files {
+        let report = files(&given, settings).unwrap_or_else(|error| panic!("{code}: {error:?}"));
+        assert!(report.notes.iter().all(|note| note.message.ends_with('.')));
+        let found: Vec<_> = report.notes.iter().map(|note| (note.code.as_str(), note.severity)).collect();
+        assert!(found.contains(&(code, severity)), "{code}: {found:?}");
+        assert!(!usual.contains(&(code, severity)), "{code}");
+        met.insert(code);
+    }
     let (_, passed_over) = mat::read(&sample("passed_over.mat")).unwrap();
     met.extend(passed_over.iter().map(|note| note.code.as_str()));
     // What files declare beside the tables.
-    let (table, read) = (read_electrodes(e.as_bytes()).unwrap().0, read_maps(m.as_bytes()).unwrap().0);
+    let (table, read) = electrodes_and_maps(&e, &m);
     let bad = vec![Label::new("Cz")];
     let declared: [(&str, &str, Wishes); 3] = [
         ("unit-overruled", "warning", Wishes { declared_unit: Some(LengthUnit::Metre), ..Wishes::default() }),

@@ -3,10 +3,9 @@ use inward_core::electrode::{Label, Landmark};
 use inward_core::finding::Origin;
 use inward_core::head::{Axes, AxesName, LengthUnit};
 use inward_core::placement::{Evidence, Placement, Wishes, place};
-use inward_core::read::{read_electrodes, read_maps};
 use inward_core::report::FittedMap;
 use inward_core::{Error, MapReport, Report, Request, Settings, Vec3, analyse};
-use inward_tests::{Draw, Electrodes, PlainSeries, example};
+use inward_tests::{Draw, Electrodes, PlainSeries, electrodes_and_maps, example};
 
 fn electrodes() -> String {
     example("watch_electrodes.tsv")
@@ -17,7 +16,12 @@ fn maps() -> String {
 }
 
 fn try_run(electrodes: Option<&str>, maps: &str, settings: Settings) -> Result<Report, Error> {
-    analyse(&Request { electrodes: electrodes.map(str::as_bytes), maps: maps.as_bytes(), settings, build: None })
+    analyse(&Request {
+        electrodes: electrodes.map(str::as_bytes),
+        maps: maps.as_bytes(),
+        settings,
+        ..Request::default()
+    })
 }
 
 fn run(electrodes: Option<&str>, maps: &str, settings: Settings) -> Report {
@@ -380,7 +384,7 @@ fn an_unusual_head_is_said_wherever_an_answer_is() {
         electrodes: Some(e.as_bytes()),
         maps: m.as_bytes(),
         settings: Settings { unusual_head: true, ..Settings::default() },
-        build: None,
+        ..Request::default()
     };
     let study = inward_core::Study::open(&request).unwrap();
     for (index, map) in fitted(&report).into_iter().enumerate() {
@@ -424,7 +428,7 @@ fn heads_from_40_to_120_mm_are_computed() {
 }
 
 fn placed(electrodes: &str, maps: &str, wishes: &Wishes) -> Placement {
-    let (table, maps) = (read_electrodes(electrodes.as_bytes()).unwrap().0, read_maps(maps.as_bytes()).unwrap().0);
+    let (table, maps) = electrodes_and_maps(electrodes, maps);
     place(Some(&table), &maps, wishes).unwrap()
 }
 
@@ -456,7 +460,7 @@ fn what_files_declare_is_heeded() {
     assert_eq!(placement.choices[0].from, Origin::Declared);
     assert!(!placement.notes.iter().any(|note| note.code.as_str() == "unit-overruled"));
     let wrong = Wishes { unit: Some(LengthUnit::Metre), ..Wishes::default() };
-    let (table, read) = (read_electrodes(e.as_bytes()).unwrap().0, read_maps(m.as_bytes()).unwrap().0);
+    let (table, read) = electrodes_and_maps(&e, &m);
     assert_eq!(place(Some(&table), &read, &wrong).unwrap_err().finding().code.as_str(), "units-unrecognised");
 
     let more = m.clone() + "EMG1\t1\t2\t3\t4\t5\t6\n";

@@ -35,6 +35,9 @@ function keepRequest(request) {
   const kept = { ...request };
   if (kept.electrodes !== undefined) kept.electrodes = keepContent(kept.electrodes);
   if (kept.maps !== undefined) kept.maps = keepContent(kept.maps);
+  if (kept.files !== undefined) {
+    kept.files = kept.files.map(({ name, content }) => ({ name, content: keepContent(content) }));
+  }
   if (kept.settings !== undefined) kept.settings = structuredClone(kept.settings);
   return kept;
 }
@@ -133,6 +136,7 @@ export function makeEngine(compiled) {
       head: opened.head(),
       electrodes: opened.electrodes(),
       notes: opened.notes(),
+      understood: opened.understood(),
       count: opened.count,
     }));
     kept = keep();

@@ -86,6 +86,11 @@ impl Study {
         plain(&self.0.notes())
     }
 
+    /// What was made of the files.
+    pub fn understood(&self) -> Result<JsValue, JsValue> {
+        plain(&self.0.understood())
+    }
+
     /// The report without its maps.
     pub fn preamble(&self) -> Result<JsValue, JsValue> {
         plain(&self.0.preamble())

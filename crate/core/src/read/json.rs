@@ -1,19 +1,16 @@
 use super::content::{Body, Cells, Part, Record, Tree};
+use super::scan::Raw;
 use super::table::{is_missing, number};
 use super::{MOST_ELECTRODES, MOST_MAPS};
 use crate::finding::{Code, Error, Finding, Place};
-use core::fmt;
 use ndarray::Array2;
-use serde::de::{Deserializer, Error as _, MapAccess, SeqAccess, Visitor};
-use serde_json::value::RawValue;
-use std::borrow::Cow;
 use std::collections::HashMap;
 
 /// Lists and objects inside one another that are looked into: a table needs four.
 const DEEPEST: usize = 16;
 
-/// Most items of one list or object: a header beside the most maps.
-const MOST_ITEMS: usize = MOST_MAPS + 8;
+/// Most keys of the records of a table.
+const MOST_KEYS: usize = MOST_MAPS + 8;
 
 /// The parts of a JSON text: a list of lists of numbers is a matrix, a list of objects or an object of equally long
 /// lists is a table, any other object has a part for each of its lists and objects.
@@ -24,16 +21,17 @@ const MOST_ITEMS: usize = MOST_MAPS + 8;
 /// # Errors
 /// `json-syntax` with line and byte; `json-content` for what is no table, or nested more deeply.
 pub(super) fn read_json(text: &str) -> Result<Vec<Part>, Error> {
-    let text = without_nan(text);
-    let text = &*text;
-    let root: &RawValue = serde_json::from_str(text).map_err(|error| {
-        let before: usize = text.split('\n').take(error.line().saturating_sub(1)).map(|line| line.len() + 1).sum();
-        let place =
-            Place { line: Some(error.line().max(1)), byte: Some((before + error.column()).max(1)), ..Place::default() };
-        Error::from(Finding::new(Code::JsonSyntax).at(place).with("cut_short", error.is_eof()))
+    let root = Raw::of(text).map_err(|stray| {
+        let line = text.bytes().take(stray.at).filter(|byte| *byte == b'\n').count() + 1;
+        let place = Place { line: Some(line), byte: Some(stray.at + 1), ..Place::default() };
+        Error::from(Finding::new(Code::JsonSyntax).at(place).with("cut_short", stray.is_end))
     })?;
     let json = Json { text };
-    if root.get().starts_with('{') { json.object(root, None) } else { Ok(json.list(root, None)?.into_iter().collect()) }
+    if root.text().starts_with('{') {
+        json.object(root, None)
+    } else {
+        Ok(json.list(root, None)?.into_iter().collect())
+    }
 }
 
 /// The whole text, to tell where a piece of it stands.
@@ -41,8 +39,6 @@ pub(super) fn read_json(text: &str) -> Result<Vec<Part>, Error> {
 struct Json<'a> {
     text: &'a str,
 }
-
-type Raw<'a> = &'a RawValue;
 
 impl<'a> Json<'a> {
     /// Line of a piece of the text. Callers ask for few, or for one after another by [`Lines`].
@@ -53,7 +49,7 @@ impl<'a> Json<'a> {
     }
 
     fn offset(self, piece: Raw<'_>) -> usize {
-        (piece.get().as_ptr() as usize).saturating_sub(self.text.as_ptr() as usize).min(self.text.len())
+        (piece.text().as_ptr() as usize).saturating_sub(self.text.as_ptr() as usize).min(self.text.len())
     }
 
     fn refuse(self, piece: Raw<'_>, why: &'static str) -> Error {
@@ -61,13 +57,11 @@ impl<'a> Json<'a> {
     }
 
     fn items(self, list: Raw<'a>) -> Result<Vec<Raw<'a>>, Error> {
-        let mut source = serde_json::Deserializer::from_str(list.get());
-        source.deserialize_seq(Items).map_err(|_| self.refuse(list, "json-large"))
+        list.items().ok_or_else(|| self.refuse(list, "json-large"))
     }
 
     fn fields(self, object: Raw<'a>) -> Result<Vec<(String, Raw<'a>)>, Error> {
-        let mut source = serde_json::Deserializer::from_str(object.get());
-        source.deserialize_map(Fields).map_err(|_| self.refuse(object, "json-large"))
+        object.fields().ok_or_else(|| self.refuse(object, "json-large"))
     }
 
     /// An object: columns of a table, or a part for each key that holds several values, and one for the others.
@@ -80,7 +74,7 @@ impl<'a> Json<'a> {
         let mut record = Record::new();
         for (key, value) in fields {
             let name = outer.map_or_else(|| key.clone(), |outer| format!("{outer}.{key}"));
-            let nested = match value.get().as_bytes() {
+            let nested = match value.text().as_bytes() {
                 [b'[', ..] => self.list(value, Some(&name)).ok().flatten().into_iter().collect(),
                 [b'{', ..] if outer.is_none() && !is_description(&key) => self.object(value, Some(&name))?,
                 _ => Vec::new(),
@@ -100,13 +94,13 @@ impl<'a> Json<'a> {
 
     /// The table of an object whose values are equally long lists without further structure; `None` for other objects.
     fn columns(self, fields: &[(String, Raw<'a>)]) -> Result<Option<Cells>, Error> {
-        let lists = fields.iter().all(|(_, value)| value.get().starts_with('['));
+        let lists = fields.iter().all(|(_, value)| value.text().starts_with('['));
         if !lists || fields.len() < 2 {
             return Ok(None);
         }
-        let columns = fields.iter().map(|(_, value)| self.items(value)).collect::<Result<Vec<_>, _>>()?;
+        let columns = fields.iter().map(|(_, value)| self.items(*value)).collect::<Result<Vec<_>, _>>()?;
         let height = columns.first().map_or(0, Vec::len);
-        let flat = |column: &Vec<Raw<'_>>| column.len() == height && column.iter().all(|value| is_scalar(value));
+        let flat = |column: &Vec<Raw<'_>>| column.len() == height && column.iter().all(|value| value.is_scalar());
         if height < 2 || !columns.iter().all(flat) {
             return Ok(None);
         }
@@ -114,7 +108,7 @@ impl<'a> Json<'a> {
         cells.push(1, fields.iter().map(|(key, _)| key.as_str()));
         for row in 0..height {
             let values: Vec<String> =
-                columns.iter().map(|column| column.get(row).map_or_else(String::new, |value| word(value))).collect();
+                columns.iter().map(|column| column.get(row).map_or_else(String::new, |value| value.word())).collect();
             cells.push(row + 1, values.iter().map(String::as_str));
         }
         Ok(Some(cells))
@@ -122,11 +116,11 @@ impl<'a> Json<'a> {
 
     /// A list: words, numbers, rows of numbers, rows of fields, or objects with the same keys; `None` if it is empty.
     fn list(self, list: Raw<'a>, name: Option<&str>) -> Result<Option<Part>, Error> {
-        if !list.get().starts_with('[') {
+        if !list.text().starts_with('[') {
             return Err(self.refuse(list, "json-scalar"));
         }
         let items = self.items(list)?;
-        let body = match items.first().map(|item| item.get().as_bytes()) {
+        let body = match items.first().map(|item| item.text().as_bytes()) {
             None => return Ok(None),
             Some([b'{', ..]) => Body::Cells(self.records(&items)?),
             Some([b'[', ..]) => self.rows(&items)?,
@@ -136,11 +130,11 @@ impl<'a> Json<'a> {
     }
 
     fn scalars(self, items: &[Raw<'a>], list: Raw<'a>) -> Result<Body, Error> {
-        if let Some(nested) = items.iter().find(|item| !is_scalar(item)) {
-            return Err(self.refuse(nested, "json-mixed"));
+        if let Some(nested) = items.iter().find(|item| !item.is_scalar()) {
+            return Err(self.refuse(*nested, "json-mixed"));
         }
-        if items.iter().any(|item| item.get().starts_with('"') && !is_missing(&word(item))) {
-            return Ok(Body::Words(items.iter().map(|item| word(item)).collect()));
+        if items.iter().any(|item| item.text().starts_with('"') && !is_missing(&item.word())) {
+            return Ok(Body::Words(items.iter().map(|item| item.word()).collect()));
         }
         let column = self.numbers(items)?;
         let count = column.len();
@@ -154,18 +148,18 @@ impl<'a> Json<'a> {
         let mut width = None;
         let mut lines = Lines::new(self);
         for (index, item) in items.iter().enumerate() {
-            if !item.get().starts_with('[') {
-                return Err(self.refuse(item, "json-mixed"));
+            if !item.text().starts_with('[') {
+                return Err(self.refuse(*item, "json-mixed"));
             }
-            let row = self.items(item)?;
-            if let Some(nested) = row.iter().find(|value| !is_scalar(value)) {
-                return Err(self.refuse(nested, "json-deep"));
+            let row = self.items(item.to_owned())?;
+            if let Some(nested) = row.iter().find(|value| !value.is_scalar()) {
+                return Err(self.refuse(*nested, "json-deep"));
             }
-            if row.iter().any(|value| value.get().starts_with('"') && !is_missing(&word(value))) {
+            if row.iter().any(|value| value.text().starts_with('"') && !is_missing(&value.word())) {
                 return self.mixed(items);
             }
             let expected = *width.get_or_insert(row.len());
-            let line = lines.of(item);
+            let line = lines.of(item.to_owned());
             if row.len() != expected {
                 let place = Place { line: Some(line), ..Place::default() };
                 let finding = Finding::new(Code::TableRagged).at(place);
@@ -175,7 +169,7 @@ impl<'a> Json<'a> {
                 || (expected > MOST_MAPS + 1)
                 || (index > MOST_ELECTRODES && expected > MOST_ELECTRODES)
             {
-                return Err(self.refuse(item, "json-large"));
+                return Err(self.refuse(*item, "json-large"));
             }
             matrix.extend(self.numbers(&row)?);
         }
@@ -190,18 +184,18 @@ impl<'a> Json<'a> {
         let mut cells: Option<Cells> = None;
         let mut lines = Lines::new(self);
         for item in items {
-            let row = self.items(item)?;
-            if let Some(nested) = row.iter().find(|value| !is_scalar(value)) {
-                return Err(self.refuse(nested, "json-deep"));
+            let row = self.items(item.to_owned())?;
+            if let Some(nested) = row.iter().find(|value| !value.is_scalar()) {
+                return Err(self.refuse(*nested, "json-deep"));
             }
-            let line = lines.of(item);
+            let line = lines.of(item.to_owned());
             let cells = cells.get_or_insert_with(|| Cells::new(row.len()));
             if row.len() != cells.width() {
                 let place = Place { line: Some(line), ..Place::default() };
                 let finding = Finding::new(Code::TableRagged).at(place);
                 return Err(finding.with("found", row.len()).with("expected", cells.width()).into());
             }
-            let words: Vec<String> = row.iter().map(|value| word(value)).collect();
+            let words: Vec<String> = row.iter().map(|value| value.word()).collect();
             cells.push(line, words.iter().map(String::as_str));
         }
         Ok(Body::Cells(cells.unwrap_or_default()))
@@ -213,43 +207,43 @@ impl<'a> Json<'a> {
         let mut names: Vec<String> = Vec::new();
         let mut columns: HashMap<String, usize> = HashMap::new();
         for item in items {
-            for (name, _) in self.record(item)? {
+            for (name, _) in self.record(item.to_owned())? {
                 if !columns.contains_key(&name) {
                     columns.insert(name.clone(), names.len());
                     names.push(name);
                 }
             }
-            if names.len() > MOST_ITEMS || (names.len() > 2 * MOST_ELECTRODES && items.len() > 2 * MOST_ELECTRODES) {
-                return Err(self.refuse(item, "json-large"));
+            if names.len() > MOST_KEYS || (names.len() > 2 * MOST_ELECTRODES && items.len() > 2 * MOST_ELECTRODES) {
+                return Err(self.refuse(*item, "json-large"));
             }
         }
         let mut lines = Lines::new(self);
         let mut cells = Cells::new(names.len()).headed();
-        cells.push(items.first().map_or(1, |first| lines.of(first)), names.iter().map(String::as_str));
+        cells.push(items.first().map_or(1, |first| lines.of(first.to_owned())), names.iter().map(String::as_str));
         let mut words = vec![String::new(); names.len()];
         for item in items {
             words.iter_mut().for_each(String::clear);
-            for (name, value) in self.record(item)? {
+            for (name, value) in self.record(item.to_owned())? {
                 if let Some(field) = columns.get(&name).and_then(|&column| words.get_mut(column)) {
-                    *field = word(value);
+                    *field = value.word();
                 }
             }
-            cells.push(lines.of(item), words.iter().map(String::as_str));
+            cells.push(lines.of(item.to_owned()), words.iter().map(String::as_str));
         }
         Ok(cells)
     }
 
     /// The fields of an object in a list of them.
     fn record(self, item: Raw<'a>) -> Result<Vec<(String, Raw<'a>)>, Error> {
-        if !item.get().starts_with('{') {
+        if !item.text().starts_with('{') {
             return Err(self.refuse(item, "json-mixed"));
         }
         let mut flat = Vec::new();
         for (key, value) in self.fields(item)? {
-            let values = if value.get().starts_with('[') { self.items(value)? } else { vec![value] };
+            let values = if value.text().starts_with('[') { self.items(value)? } else { vec![value] };
             match values.as_slice() {
-                [value] if is_scalar(value) => flat.push((key, *value)),
-                [x, y, z] if [x, y, z].iter().all(|value| is_scalar(value)) => {
+                [value] if value.is_scalar() => flat.push((key, *value)),
+                [x, y, z] if [x, y, z].iter().all(|value| value.is_scalar()) => {
                     flat.extend([("x".into(), *x), ("y".into(), *y), ("z".into(), *z)]);
                 }
                 _ => return Err(self.refuse(value, "json-deep")),
@@ -260,11 +254,11 @@ impl<'a> Json<'a> {
 
     fn numbers(self, items: &[Raw<'_>]) -> Result<Vec<f64>, Error> {
         let value = |(index, item): (usize, &Raw<'_>)| {
-            if item.get() == "null" || item.get().starts_with('"') {
+            if ["null", "NaN"].contains(&item.text()) || item.text().starts_with('"') {
                 return Ok(f64::NAN);
             }
-            let place = || Place { column: Some(index + 1), ..self.place(item) };
-            super::table::expect_number(item.get(), false, place)
+            let place = || Place { column: Some(index + 1), ..self.place(item.to_owned()) };
+            super::table::expect_number(item.text(), false, place)
         };
         items.iter().enumerate().map(value).collect()
     }
@@ -273,7 +267,7 @@ impl<'a> Json<'a> {
         if depth > DEEPEST {
             return Err(self.refuse(value, "json-deep"));
         }
-        Ok(match value.get().as_bytes() {
+        Ok(match value.text().as_bytes() {
             [b'[', ..] => Tree::List(
                 self.items(value)?.into_iter().map(|item| self.tree(item, depth + 1)).collect::<Result<_, _>>()?,
             ),
@@ -283,8 +277,8 @@ impl<'a> Json<'a> {
                     fields.map(|(key, item)| Ok((key, self.tree(item, depth + 1)?))).collect::<Result<_, Error>>()?,
                 )
             }
-            [b'"', ..] => Tree::Text(word(value)),
-            _ => number(value.get()).map_or(Tree::Nothing, Tree::Number),
+            [b'"', ..] => Tree::Text(value.word()),
+            _ => number(value.text()).map_or(Tree::Nothing, Tree::Number),
         })
     }
 }
@@ -314,86 +308,6 @@ impl<'a> Lines<'a> {
 fn is_description(key: &str) -> bool {
     let key = key.to_ascii_lowercase();
     ["coordinates", "landmark", "fiducial"].iter().any(|word| key.contains(word))
-}
-
-fn is_scalar(value: &RawValue) -> bool {
-    !value.get().starts_with(['[', '{'])
-}
-
-/// A value without structure as a field of a table: `null` is missing, numbers stay as they are written.
-fn word(value: &RawValue) -> String {
-    match value.get() {
-        "null" => String::new(),
-        quoted if quoted.starts_with('"') => serde_json::from_str::<String>(quoted).unwrap_or_default().trim().into(),
-        plain => plain.into(),
-    }
-}
-
-/// Keys and values of an object, in their order.
-struct Fields;
-
-impl<'de> Visitor<'de> for Fields {
-    type Value = Vec<(String, &'de RawValue)>;
-
-    fn expecting(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        f.write_str("an object")
-    }
-
-    fn visit_map<A: MapAccess<'de>>(self, mut map: A) -> Result<Self::Value, A::Error> {
-        let mut fields = Vec::new();
-        while let Some(field) = map.next_entry()? {
-            fields.push(field);
-            if fields.len() > MOST_ITEMS {
-                return Err(A::Error::custom("too many"));
-            }
-        }
-        Ok(fields)
-    }
-}
-
-/// Values of a list.
-struct Items;
-
-impl<'de> Visitor<'de> for Items {
-    type Value = Vec<&'de RawValue>;
-
-    fn expecting(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        f.write_str("a list")
-    }
-
-    fn visit_seq<A: SeqAccess<'de>>(self, mut list: A) -> Result<Self::Value, A::Error> {
-        let mut items = Vec::new();
-        while let Some(item) = list.next_element()? {
-            items.push(item);
-            if items.len() > MOST_ITEMS {
-                return Err(A::Error::custom("too many"));
-            }
-        }
-        Ok(items)
-    }
-}
-
-/// The text with each `NaN` outside strings written as an empty string, which is as long: JSON has no NaN, but programs
-/// that write it are common.
-fn without_nan(text: &str) -> Cow<'_, str> {
-    let outside = |piece: &str, quoted: bool| !quoted && piece.contains("NaN");
-    let mut quoted = false;
-    let mut found = false;
-    let mut result = String::new();
-    for (index, piece) in text.split('"').enumerate() {
-        if index > 0 {
-            result.push('"');
-        }
-        if outside(piece, quoted) {
-            found = true;
-            result.push_str(&piece.replace("NaN", "\"\" "));
-        } else {
-            result.push_str(piece);
-        }
-        let escaped = quoted && piece.bytes().rev().take_while(|byte| *byte == b'\\').count() % 2 == 1;
-        quoted = quoted == escaped;
-    }
-    if found { result.into() } else { text.into() }
 }
 
 #[cfg(test)]
@@ -454,7 +368,7 @@ mod tests {
             error.map(|finding| (finding.code, finding.place.and_then(|place| Some((place.line?, place.byte)))))
         };
         assert_eq!(place("[[1, 2],\n[3, ]]"), Some((Code::JsonSyntax, Some((2, Some(14))))));
-        assert_eq!(place("[[1, 2],"), Some((Code::JsonSyntax, Some((1, Some(8))))));
+        assert_eq!(place("[[1, 2],"), Some((Code::JsonSyntax, Some((1, Some(9))))));
         assert_eq!(place("[[1, 2],\n[3]]"), Some((Code::TableRagged, Some((2, None)))));
         assert_eq!(place("[[1, 2],\n[3, [4]]]"), Some((Code::JsonContent, Some((2, Some(14))))));
         let deep = "[".repeat(100_000) + &"]".repeat(100_000);

@@ -7,6 +7,7 @@ mod content;
 mod json;
 pub mod mat;
 pub mod npy;
+mod scan;
 pub mod signature;
 mod table;
 mod text;
