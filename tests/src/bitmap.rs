@@ -25,7 +25,7 @@ impl Bitmap {
     pub fn coloured(&self, x: f64, y: f64) -> bool {
         let [red, green, blue, alpha] = self.at(x, y);
         let (low, high) = (red.min(green).min(blue), red.max(green).max(blue));
-        alpha > 0 && high - low > 30
+        u32::from(high - low) * u32::from(alpha) > 30 * 255
     }
 
     /// How much redder than blue a point is.

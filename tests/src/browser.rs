@@ -58,7 +58,12 @@ fn chromium(profile: &Path, downloads: &Path) -> (Driver, Value) {
                 "--window-size=1280,1000",
                 format!("--user-data-dir={}", profile.display()),
             ],
-            "prefs": { "download.default_directory": downloads, "download.prompt_for_download": false },
+            "prefs": {
+                "download.default_directory": downloads,
+                "download.prompt_for_download": false,
+                // One after the other without a question.
+                "profile.default_content_setting_values.automatic_downloads": 1,
+            },
         },
     });
     (driver, capabilities)
@@ -87,6 +92,8 @@ fn firefox(profile: &Path, downloads: &Path) -> (Driver, Value) {
                 "browser.download.folderList": 2,
                 "browser.download.dir": downloads,
                 "browser.download.useDownloadDir": true,
+                // A panel that opens by itself takes the next click or key.
+                "browser.download.alwaysOpenPanel": false,
                 "browser.helperApps.neverAsk.saveToDisk": "application/json,text/plain",
             },
         },

@@ -169,9 +169,29 @@ impl Page {
         found.as_array().expect("a list").iter().map(|text| text.as_str().unwrap_or_default().into()).collect()
     }
 
-    /// Clicks on an element.
+    /// Clicks on an element, in the middle of the window where nothing lies over it.
     pub fn click(&self, selector: &str) {
+        let script = "document.querySelector(arguments[0])?.scrollIntoView({ block: 'center', behavior: 'instant' })";
+        self.ask(script, &[json!(selector)]);
         self.session.click(&self.find(selector)).unwrap_or_else(|why| panic!("{selector}: {why}"));
+    }
+
+    /// Moves the mouse to a place in CSS pixels from the middle of an element, which is brought into view before.
+    pub fn hover(&self, selector: &str, x: i64, y: i64) {
+        self.bring_into_view(selector);
+        self.session.hover(&self.find(selector), x, y).unwrap_or_else(|why| panic!("{selector}: {why}"));
+    }
+
+    /// A click at a place in CSS pixels from the middle of an element, which is brought into view before.
+    pub fn click_at(&self, selector: &str, x: i64, y: i64) {
+        self.bring_into_view(selector);
+        self.session.click_at(&self.find(selector), x, y).unwrap_or_else(|why| panic!("{selector}: {why}"));
+    }
+
+    fn bring_into_view(&self, selector: &str) {
+        let script = "document.querySelector(arguments[0]).scrollIntoView({ block: 'center', behavior: 'instant' })";
+        self.ask(script, &[json!(selector)]);
+        self.settle();
     }
 
     /// Value of a script without arguments.
@@ -270,9 +290,20 @@ impl Page {
 
     /// Downloads the report by its button and reads the file that lands on disk.
     pub fn download_report(&self) -> Value {
+        self.downloaded(|| self.click("#download-json"))
+    }
+
+    /// The same without moving focus or mouse.
+    pub fn report(&self) -> Value {
+        self.downloaded(|| {
+            self.value("document.querySelector('#download-json').click()");
+        })
+    }
+
+    fn downloaded(&self, ask: impl Fn()) -> Value {
         let file = self.session.downloads().join("inward-report.json");
         let _ = std::fs::remove_file(&file);
-        self.click("#download-json");
+        ask();
         let start = Instant::now();
         loop {
             // Half a file is not JSON yet.

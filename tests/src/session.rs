@@ -125,6 +125,13 @@ impl Session {
         self.mouse(element, x, y, &["pointerDown", "pointerUp"])
     }
 
+    /// Moves the mouse into the upper left corner of the window, where nothing is.
+    pub fn mouse_away(&self) -> Outcome<()> {
+        let corner = json!({ "type": "pointerMove", "duration": 0, "origin": "viewport", "x": 1, "y": 1 });
+        self.post("/actions", &json!({ "actions": [{ "type": "pointer", "id": "mouse", "actions": [corner] }] }))
+            .map(|_| ())
+    }
+
     fn mouse(&self, element: &Element, x: i64, y: i64, then: &[&str]) -> Outcome<()> {
         let start = json!({ "type": "pointerMove", "duration": 0, "origin": element.argument(), "x": x, "y": y });
         let then = then.iter().map(|kind| json!({ "type": kind, "button": 0 }));
@@ -153,6 +160,13 @@ impl Session {
     /// A command of Chromium's own protocol.
     pub fn chromium_command(&self, command: &str, parameters: &Value) -> Outcome<()> {
         self.post("/goog/cdp/execute", &json!({ "cmd": command, "params": parameters })).map(|_| ())
+    }
+
+    /// Gives the page in Chromium a window of this size in CSS pixels, each a pixel of the picture, without scroll bars.
+    pub fn viewport(&self, width: u32, height: u32) -> Outcome<()> {
+        let metrics = json!({ "width": width, "height": height, "deviceScaleFactor": 1, "mobile": false });
+        self.chromium_command("Emulation.setScrollbarsHidden", &json!({ "hidden": true }))?;
+        self.chromium_command("Emulation.setDeviceMetricsOverride", &metrics)
     }
 
     /// Runs a script in Firefox's own window, around the page.

@@ -52,14 +52,15 @@ impl Surroundings {
     }
 
     fn tell_firefox(self, session: &Session) -> Outcome<()> {
-        // 0 is dark and 1 light; 2 forces the person's colours on every page, 0 on none.
+        // The keyboard goes back to the page. 0 is dark and 1 light; 2 forces the person's colours on every page, 0 on none.
         let script = format!(
             "Services.prefs.setIntPref('layout.css.prefers-color-scheme.content-override', {});\
              Services.prefs.setIntPref('browser.display.document_color_use', {});\
              Services.prefs.setIntPref('ui.prefersReducedMotion', {});\
              const browser = Services.wm.getMostRecentWindow('navigator:browser').gBrowser.selectedBrowser;\
              browser.browsingContext.top.mediumOverride = {};\
-             browser.fullZoom = {};",
+             browser.fullZoom = {};\
+             browser.focus();",
             i32::from(!self.dark),
             if self.forced_colours { 2 } else { 0 },
             i32::from(self.reduced_motion),

@@ -43,6 +43,15 @@ impl Variant {
         Self(format!("{}\n//\n{}", &self.0[..start], &self.0[start..]))
     }
 
+    /// Puts other words in place of some of the policy's.
+    pub fn with_policy(self, from: &str, to: &str) -> Self {
+        let start = self.0.find("<meta http-equiv=\"Content-Security-Policy\"").expect("the page holds a policy");
+        let end = start + self.0[start..].find('>').expect("a tag ends");
+        let policy = &self.0[start..end];
+        assert!(policy.contains(from), "{from} stands in {policy}");
+        Self(format!("{}{}{}", &self.0[..start], policy.replace(from, to), &self.0[end..]))
+    }
+
     /// Takes the policy away.
     pub fn without_policy(self) -> Self {
         let start = self.0.find("<meta http-equiv=\"Content-Security-Policy\"").expect("the page holds a policy");
