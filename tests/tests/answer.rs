@@ -258,7 +258,7 @@ fn views_paint_the_dipole_where_it_is(browser: Browser) {
     let seen: [(&str, Flattened, &str); 3] = [
         ("view-above", |p| (p[0], p[1]), "seen from above"),
         ("view-behind", |p| (p[0], p[2]), "seen from behind"),
-        ("view-left", |p| (-p[1], p[2]), "seen from the left"),
+        ("view-left", |p| (-p[1], p[2]), "seen from the left (L)"),
     ];
     let mut places: Vec<Vec3> = Vec::new();
     let mut painted: Vec<Vec<(Bitmap, f64, f64, f64)>> = Vec::new();

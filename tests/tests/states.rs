@@ -152,7 +152,7 @@ fn paper_holds_the_answer(browser: Browser) {
             ("map-measured", &["L", "R", "front", "seen from above"][..]),
             ("view-above", &["L", "R", "seen from above"]),
             ("view-behind", &["L", "R", "seen from behind"]),
-            ("view-left", &["seen from the left"]),
+            ("view-left", &["seen from the left (L)"]),
         ] {
             let written = page.written_on(id);
             for word in words {
