@@ -19,7 +19,7 @@ pub use wishes::{
     Polar, Role, TimeUnit, Times, Wishes,
 };
 
-use crate::electrode::{Electrode, Label, Landmark};
+use crate::electrode::{Electrode, Kind as LabelKind, Label, Landmark, Reading as LabelReading};
 use crate::finding::{Choice, Code, Error, Finding, Origin, Place, Value};
 use crate::head::LengthUnit;
 use crate::map::Maps;
@@ -27,6 +27,7 @@ use crate::math::Vec3;
 use crate::read::{Body, Content, Encoding, Format, Record};
 use grid::{Grid, Header};
 use serde::Serialize;
+use std::collections::HashMap;
 
 /// A file with its name and what was read of it.
 #[derive(Clone, Debug, PartialEq)]
@@ -179,7 +180,7 @@ impl Found {
 ///
 /// # Errors
 /// `maps-missing`, `files-several`, `shape-unmatched`, `table-columns`, `column-unknown`, `number-expected`,
-/// `number-range`, `electrodes-too-many`, `maps-too-many`, `maps-none`, `unmixing-singular`,
+/// `number-range`, `label-duplicate`, `electrodes-too-many`, `maps-too-many`, `maps-none`, `unmixing-singular`,
 /// `baseline-empty`.
 pub fn understand(sources: &[Source], wishes: &Wishes) -> Result<Understood, Error> {
     let mut found = Found {
@@ -454,6 +455,9 @@ impl Chosen {
             Some(numbered.map(|(row, label)| Electrode { label, position: None, line: line(row) }).collect())
         });
         let electrode_grid = self.electrodes.or(self.labels.first().copied()).and_then(grid);
+        if let (Some(electrodes), Some(electrode_grid)) = (&electrodes, electrode_grid) {
+            refuse_duplicates(&found.place("electrodes", electrode_grid), electrodes)?;
+        }
         let file_names = [electrode_grid, Some(maps_grid)].map(|grid| found.given_name(grid?.file));
         let files = facts(grids, records, sources, &columns, wishes, &mut found);
         note_details(grids, &mut found);
@@ -473,6 +477,21 @@ impl Chosen {
             notes: found.notes,
         })
     }
+}
+
+/// A label may stand once, unless it names no electrode of the scalp.
+fn refuse_duplicates(table: &Place, electrodes: &[Electrode]) -> Result<(), Error> {
+    let mut seen: HashMap<String, usize> = HashMap::new();
+    for Electrode { label, line, .. } in electrodes {
+        let Some(first) = seen.insert(label.key(), *line) else { continue };
+        if matches!(LabelReading::of(label).kind, LabelKind::Other(_)) {
+            continue;
+        }
+        let place = Place { label: Some(label.to_string()), line: Some(*line), ..table.clone() };
+        let finding = Finding::new(Code::LabelDuplicate).at(place).with("label", label.as_str());
+        return Err(finding.with("first_line", first).into());
+    }
+    Ok(())
 }
 
 /// With an unmixing matrix of components × channels, a square matrix of channels × channels is its sphering matrix.
