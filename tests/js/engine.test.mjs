@@ -362,7 +362,7 @@ test("errors point to the place", () => {
   assert.deepEqual({ ...where }, { input: "electrodes", file: null, line: 6, column: 4, byte: null, label: labels[4], map: null });
   const bytes = new Uint8Array(Buffer.from(maps));
   bytes[40] = 0xff;
-  const encoding = thrown(() => engine.analyse({ electrodes, maps: bytes }));
+  const encoding = thrown(() => engine.analyse({ electrodes, maps: bytes, settings: { files: { maps: { encoding: "utf-8" } } } }));
   assert.equal(encoding.code, "input-encoding");
   assert.equal(encoding.where.byte, 41);
 });
