@@ -65,6 +65,54 @@ pub fn heavy(size: usize) -> Vec<Heavy> {
     let sparse = level5::matrix(5, 1, 1, "S", &[]);
     add("mat of what is passed over", level5::file(&vec![sparse.clone(); size / sparse.len()]), 0);
 
+    add("text of numbers", lines(size, |k| format!("E{k}"), |k| format!("\t{:.3}", (k as f64 * 0.7).sin()), 64), 0);
+    add("text of decimal commas", lines(size, |k| format!("E{k}"), |k| format!(";{},5", k % 97), 64), 0);
+    add("text of blanks", lines(size, |_| "Cz".into(), |_| "   1".into(), 64), 0);
+    add("text of narrow columns", lines(size, |_| "a".into(), |_| "\t1".into(), 512), 0);
+    add("text of quotes", lines(size, |k| format!("\"E,{k}\""), |_| ",\"1\"".into(), 64), 0);
+    add("text of quotes in quotes", [&b"a,\""[..], &b"\"\"".repeat(size / 2 - 4), b"\"\n"].concat(), 0);
+    add("text of open quotes", lines(size, |_| "\"a \"b".into(), |_| ",\"1".into(), 16), 0);
+    add("text in one line", b"1 ".repeat(size / 2), 0);
+    let wide = lines(size / 2, |_| "Cz".into(), |_| "\t1".into(), 64);
+    let wide = wide.iter().flat_map(|&letter| [letter, 0]).collect::<Vec<u8>>();
+    add("text in UTF-16", [&b"\xff\xfe"[..], &wide].concat(), 0);
+    add("text in Latin-1", b"\xb5V \xe9\xe9\xe9\xe9\xe9\xe9\xe9\xe9\xe9,1.5\n".repeat(size / 17), 0);
+    add("text of remarks", b"# remark\n".repeat(size / 9), 0);
+    add("text of empty lines", [b"Cz 1".to_vec(), b"\r".repeat(size)].concat(), 0);
+    let rows = |row: &str, end: &str| format!("[{}{end}]", row.repeat(size / row.len()));
+    add("json matrix", rows(&format!("[{}3e-2],", "1,-2.5,".repeat(32)), "[1]").into_bytes(), 0);
+    add("json list", rows("0,", "1").into_bytes(), 0);
+    add("json words", rows("\"electrode 0001\",", "\"\"").into_bytes(), 0);
+    add("json records", rows("{\"label\":\"Cz\",\"x\":1},", "{}").into_bytes(), 0);
+    add(
+        "json keys",
+        {
+            let keys: String = (0..size / 16).map(|k| format!("\"key{k:07}\":[],")).collect();
+            format!("{{{keys}\"end\":1}}").into_bytes()
+        },
+        0,
+    );
+    add(
+        "json of distinct keys",
+        {
+            let record = |k: usize| (0..size >> 14).map(|j| format!("\"{k:04}{j:03}\":12345,")).collect::<String>();
+            let records: String = (0..1000).map(|k| format!("{{{}\"x\":1}},", record(k))).collect();
+            format!("[{records}{{}}]").into_bytes()
+        },
+        0,
+    );
+    let object = |value: &str| {
+        let count = size / (value.len() + 11);
+        let keys: String = (0..count).map(|k| format!("\"k{k:06}\":{value},")).collect();
+        format!("{{{keys}\"end\":1}}").into_bytes()
+    };
+    add("json of refused lists", object("[1,[2,[3]]]"), 0);
+    add("json of many matrices", object("[[1,2],[3,4]]"), 0);
+    add("json of many tables", object("[{\"a\":1},{\"a\":2}]"), 0);
+    add("json of spoilt numbers", object("[1e999,1]"), 0);
+    add("json deep", "[".repeat(size).into_bytes(), 0);
+    add("json nested", rows("[[[[[[[[1]]]]]]]],", "1").into_bytes(), 0);
+    add("json escapes", format!("[\"{}\"]", "\\u00e9".repeat(size / 6)).into_bytes(), 0);
     add("zip, stored", archive(&[("a.tsv".to_owned(), letters.clone())], false), size);
     add("zip, packed", archive(&[("a.tsv".to_owned(), letters.clone())], true), size);
     let files: Vec<_> =
@@ -73,6 +121,20 @@ pub fn heavy(size: usize) -> Vec<Heavy> {
     // Directories that are not there: every byte could begin one.
     add("zip without an end", [&b"PK\x03\x04"[..], &b"PK\x05\x06".repeat(size / 4)].concat(), 0);
     all
+}
+
+/// Lines of a label and values until there are so many bytes.
+fn lines(size: usize, label: impl Fn(usize) -> String, value: impl Fn(usize) -> String, values: usize) -> Vec<u8> {
+    let mut text = String::with_capacity(size + 4096);
+    for line in 0.. {
+        if text.len() >= size {
+            break;
+        }
+        text += &label(line);
+        (0..values).for_each(|k| text += &value(k));
+        text.push('\n');
+    }
+    text.into_bytes()
 }
 
 fn npy(kind: &str, columns_first: &str, shape: (usize, usize), numbers: &[u8]) -> Vec<u8> {

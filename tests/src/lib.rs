@@ -1,4 +1,5 @@
 //! Shared helpers of the checks: browsers, the page, Node, outside values, invented maps.
+mod attack;
 mod bitmap;
 mod browser;
 mod canary;
@@ -23,6 +24,7 @@ mod surroundings;
 mod tables;
 mod variant;
 
+pub use attack::attack;
 pub use bitmap::Bitmap;
 pub use browser::Browser;
 pub use canary::Canary;

@@ -2,7 +2,7 @@
 //! spoilt, hostile or of another kind is refused with the byte.
 use inward_core::read::{Body, Format, Part, mat, npy, signature, zip};
 use inward_core::report::ErrorReport;
-use inward_core::{Error, Finding};
+use inward_core::{Error, Finding, Request, analyse};
 use inward_tests::{archive, level5, sample, samples};
 use serde_json::Value;
 use std::collections::BTreeMap;
@@ -189,4 +189,23 @@ fn what_unpacks_to_more_than_the_limit_is_refused() {
     let megabyte = |count: usize| archive(&vec![("a.tsv".to_owned(), zeros[..1 << 20].to_vec()); count], true);
     assert_eq!(code(&megabyte(64)), None);
     assert_eq!(code(&megabyte(65)), Some("input-too-large"));
+}
+
+/// The same electrodes and maps in every format, each under a name that tells nothing.
+#[test]
+fn one_cap_gives_one_answer_in_every_format() {
+    let archive = zip::read(&sample("cap.zip")).unwrap();
+    let analysed = |files: &[&[u8]]| {
+        let files = ["first.thing", "second"].into_iter().zip(files.iter().copied()).collect();
+        let report = analyse(&Request { files, ..Request::default() }).unwrap_or_else(|error| panic!("{error:?}"));
+        assert_eq!(report.electrodes.len(), 19);
+        let report = serde_json::to_value(&report).unwrap();
+        report["maps"].as_array().unwrap().iter().map(|map| map["dipole"].clone()).collect::<Vec<_>>()
+    };
+    let expected = analysed(&[&archive[0].1, &archive[1].1]);
+    assert_eq!(expected.len(), 4);
+    for name in ["cap.zip", "cap.npz", "cap.mat", "cap_packed.mat"] {
+        let found = analysed(&[&sample(name)]);
+        assert!(found == expected, "{name}");
+    }
 }

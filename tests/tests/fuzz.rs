@@ -1,7 +1,6 @@
 //! Readers under spoilt files: the committed corpus and finds as they are, then changed at random for a while. Seconds a reader:
 //! `INWARD_FUZZ_SECONDS`, 10 by default; the deep search is libFuzzer's, in `fuzz/`.
-use inward_core::read::{mat, npy, zip};
-use inward_tests::{Draw, mutate, sample, samples, tests_folder};
+use inward_tests::{Draw, attack, mutate, sample, samples, tests_folder};
 use std::panic::{AssertUnwindSafe, catch_unwind};
 use std::path::Path;
 use std::time::{Duration, Instant};
@@ -60,17 +59,32 @@ fn hammer(reader: &str, endings: &[&str], read: impl Fn(&[u8])) {
 
 #[test]
 fn npy_files() {
-    hammer("npy", &[".npy"], |file| drop(npy::read(file)));
+    hammer("npy", &[".npy"], |file| attack("npy", file));
 }
 
 #[test]
 fn mat_files() {
-    hammer("mat", &[".mat"], |file| drop(mat::read(file)));
+    hammer("mat", &[".mat"], |file| attack("mat", file));
 }
 
 #[test]
 fn zip_files() {
-    hammer("zip", &[".zip", ".npz"], |file| drop(zip::read(file)));
+    hammer("zip", &[".zip", ".npz"], |file| attack("zip", file));
+}
+
+#[test]
+fn text_files() {
+    hammer("text", &[".txt", ".tsv", ".csv"], |file| attack("text", file));
+}
+
+#[test]
+fn json_files() {
+    hammer("json", &[".json"], |file| attack("json", file));
+}
+
+#[test]
+fn files_together() {
+    hammer("files", &[""], |file| attack("files", file));
 }
 
 /// What these tests are for.

@@ -1,6 +1,5 @@
 #![no_main]
-use inward_core::read::npy;
+#[path = "../../src/attack.rs"]
+mod attack;
 
-libfuzzer_sys::fuzz_target!(|file: &[u8]| {
-    let _ = npy::read(file);
-});
+libfuzzer_sys::fuzz_target!(|file: &[u8]| attack::attack("npy", file));

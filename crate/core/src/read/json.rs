@@ -4,10 +4,14 @@ use super::table::{is_missing, number};
 use super::{MOST_ELECTRODES, MOST_MAPS};
 use crate::finding::{Code, Error, Finding, Place};
 use ndarray::Array2;
+use std::borrow::Cow;
 use std::collections::HashMap;
 
 /// Lists and objects inside one another that are looked into: a table needs four.
 const DEEPEST: usize = 16;
+
+/// Most parts of an object that is no table.
+const MOST_PARTS: usize = 4_096;
 
 /// Most keys of the records of a table.
 const MOST_KEYS: usize = MOST_MAPS + 8;
@@ -26,7 +30,8 @@ pub(super) fn read_json(text: &str) -> Result<Vec<Part>, Error> {
         let place = Place { line: Some(line), byte: Some(stray.at + 1), ..Place::default() };
         Error::from(Finding::new(Code::JsonSyntax).at(place).with("cut_short", stray.is_end))
     })?;
-    let json = Json { text };
+    let breaks = breaks(text);
+    let json = Json { text, breaks: &breaks };
     if root.text().starts_with('{') {
         json.object(root, None)
     } else {
@@ -38,14 +43,23 @@ pub(super) fn read_json(text: &str) -> Result<Vec<Part>, Error> {
 #[derive(Clone, Copy)]
 struct Json<'a> {
     text: &'a str,
+    /// Line breaks before each block.
+    breaks: &'a [u32],
 }
 
 impl<'a> Json<'a> {
-    /// Line of a piece of the text. Callers ask for few, or for one after another by [`Lines`].
-    fn place(self, piece: Raw<'_>) -> Place {
+    /// Line of a piece of the text, counted from the block in which it begins: refusals that are not told in the end and
+    /// tables within tables ask for many.
+    fn line(self, piece: Raw<'_>) -> usize {
         let at = self.offset(piece);
-        let line = self.text.as_bytes().iter().take(at).filter(|byte| **byte == b'\n').count() + 1;
-        Place { line: Some(line), byte: Some(at + 1), ..Place::default() }
+        let block = at / BLOCK;
+        let before = self.breaks.get(block).map_or(0, |&breaks| breaks as usize);
+        let between = self.text.as_bytes().get(block * BLOCK..at).unwrap_or_default();
+        before + line_breaks(between) + 1
+    }
+
+    fn place(self, piece: Raw<'_>) -> Place {
+        Place { line: Some(self.line(piece)), byte: Some(self.offset(piece) + 1), ..Place::default() }
     }
 
     fn offset(self, piece: Raw<'_>) -> usize {
@@ -60,7 +74,7 @@ impl<'a> Json<'a> {
         list.items().ok_or_else(|| self.refuse(list, "json-large"))
     }
 
-    fn fields(self, object: Raw<'a>) -> Result<Vec<(String, Raw<'a>)>, Error> {
+    fn fields(self, object: Raw<'a>) -> Result<Vec<(Cow<'a, str>, Raw<'a>)>, Error> {
         object.fields().ok_or_else(|| self.refuse(object, "json-large"))
     }
 
@@ -73,7 +87,7 @@ impl<'a> Json<'a> {
         let mut parts = Vec::new();
         let mut record = Record::new();
         for (key, value) in fields {
-            let name = outer.map_or_else(|| key.clone(), |outer| format!("{outer}.{key}"));
+            let name = outer.map_or_else(|| key.to_string(), |outer| format!("{outer}.{key}"));
             let nested = match value.text().as_bytes() {
                 [b'[', ..] => self.list(value, Some(&name)).ok().flatten().into_iter().collect(),
                 [b'{', ..] if outer.is_none() && !is_description(&key) => self.object(value, Some(&name))?,
@@ -83,7 +97,10 @@ impl<'a> Json<'a> {
             if tables {
                 parts.extend(nested);
             } else {
-                record.push((key, self.tree(value, 0)?));
+                record.push((key.into_owned(), self.tree(value, 0)?));
+            }
+            if parts.len() + record.len() > MOST_PARTS {
+                return Err(self.refuse(object, "json-large"));
             }
         }
         if !record.is_empty() {
@@ -93,7 +110,7 @@ impl<'a> Json<'a> {
     }
 
     /// The table of an object whose values are equally long lists without further structure; `None` for other objects.
-    fn columns(self, fields: &[(String, Raw<'a>)]) -> Result<Option<Cells>, Error> {
+    fn columns(self, fields: &[(Cow<'a, str>, Raw<'a>)]) -> Result<Option<Cells>, Error> {
         let lists = fields.iter().all(|(_, value)| value.text().starts_with('['));
         if !lists || fields.len() < 2 {
             return Ok(None);
@@ -105,7 +122,7 @@ impl<'a> Json<'a> {
             return Ok(None);
         }
         let mut cells = Cells::new(fields.len()).headed();
-        cells.push(1, fields.iter().map(|(key, _)| key.as_str()));
+        cells.push(1, fields.iter().map(|(key, _)| key.as_ref()));
         for row in 0..height {
             let values: Vec<String> =
                 columns.iter().map(|column| column.get(row).map_or_else(String::new, |value| value.word())).collect();
@@ -146,7 +163,6 @@ impl<'a> Json<'a> {
     fn rows(self, items: &[Raw<'a>]) -> Result<Body, Error> {
         let mut matrix = Vec::new();
         let mut width = None;
-        let mut lines = Lines::new(self);
         for (index, item) in items.iter().enumerate() {
             if !item.text().starts_with('[') {
                 return Err(self.refuse(*item, "json-mixed"));
@@ -159,7 +175,7 @@ impl<'a> Json<'a> {
                 return self.mixed(items);
             }
             let expected = *width.get_or_insert(row.len());
-            let line = lines.of(item.to_owned());
+            let line = self.line(item.to_owned());
             if row.len() != expected {
                 let place = Place { line: Some(line), ..Place::default() };
                 let finding = Finding::new(Code::TableRagged).at(place);
@@ -182,13 +198,12 @@ impl<'a> Json<'a> {
 
     fn mixed(self, items: &[Raw<'a>]) -> Result<Body, Error> {
         let mut cells: Option<Cells> = None;
-        let mut lines = Lines::new(self);
         for item in items {
             let row = self.items(item.to_owned())?;
             if let Some(nested) = row.iter().find(|value| !value.is_scalar()) {
                 return Err(self.refuse(*nested, "json-deep"));
             }
-            let line = lines.of(item.to_owned());
+            let line = self.line(item.to_owned());
             let cells = cells.get_or_insert_with(|| Cells::new(row.len()));
             if row.len() != cells.width() {
                 let place = Place { line: Some(line), ..Place::default() };
@@ -204,10 +219,12 @@ impl<'a> Json<'a> {
     /// A table of objects; its columns are the keys of all of them, in the order in which they appear. A list of three
     /// numbers, such as a position, makes the columns x, y, z.
     fn records(self, items: &[Raw<'a>]) -> Result<Cells, Error> {
-        let mut names: Vec<String> = Vec::new();
-        let mut columns: HashMap<String, usize> = HashMap::new();
+        let mut names: Vec<Cow<'_, str>> = Vec::new();
+        let mut columns: HashMap<Cow<'_, str>, usize> = HashMap::new();
+        let mut given = 0;
         for item in items {
             for (name, _) in self.record(item.to_owned())? {
+                given += 1;
                 if !columns.contains_key(&name) {
                     columns.insert(name.clone(), names.len());
                     names.push(name);
@@ -217,9 +234,14 @@ impl<'a> Json<'a> {
                 return Err(self.refuse(*item, "json-large"));
             }
         }
-        let mut lines = Lines::new(self);
+        // A table of hardly anything but holes is none, and would be far larger than its text.
+        if names.len().saturating_mul(items.len()) > 4 * given + 4_096 {
+            return Err(items
+                .first()
+                .map_or_else(|| Finding::new(Code::JsonContent).into(), |first| self.refuse(*first, "json-large")));
+        }
         let mut cells = Cells::new(names.len()).headed();
-        cells.push(items.first().map_or(1, |first| lines.of(first.to_owned())), names.iter().map(String::as_str));
+        cells.push(items.first().map_or(1, |first| self.line(first.to_owned())), names.iter().map(AsRef::as_ref));
         let mut words = vec![String::new(); names.len()];
         for item in items {
             words.iter_mut().for_each(String::clear);
@@ -228,13 +250,13 @@ impl<'a> Json<'a> {
                     *field = value.word();
                 }
             }
-            cells.push(lines.of(item.to_owned()), words.iter().map(String::as_str));
+            cells.push(self.line(item.to_owned()), words.iter().map(String::as_str));
         }
         Ok(cells)
     }
 
     /// The fields of an object in a list of them.
-    fn record(self, item: Raw<'a>) -> Result<Vec<(String, Raw<'a>)>, Error> {
+    fn record(self, item: Raw<'a>) -> Result<Vec<(Cow<'a, str>, Raw<'a>)>, Error> {
         if !item.text().starts_with('{') {
             return Err(self.refuse(item, "json-mixed"));
         }
@@ -274,7 +296,9 @@ impl<'a> Json<'a> {
             [b'{', ..] => {
                 let fields = self.fields(value)?.into_iter();
                 Tree::Record(
-                    fields.map(|(key, item)| Ok((key, self.tree(item, depth + 1)?))).collect::<Result<_, Error>>()?,
+                    fields
+                        .map(|(key, item)| Ok((key.into_owned(), self.tree(item, depth + 1)?)))
+                        .collect::<Result<_, Error>>()?,
                 )
             }
             [b'"', ..] => Tree::Text(value.word()),
@@ -283,25 +307,21 @@ impl<'a> Json<'a> {
     }
 }
 
-/// Lines of pieces that follow each other, counted on from the last one.
-struct Lines<'a> {
-    json: Json<'a>,
-    at: usize,
-    line: usize,
+/// Bytes of a block in which line breaks are counted.
+const BLOCK: usize = 1024;
+
+fn breaks(text: &str) -> Vec<u32> {
+    let mut breaks = 0;
+    let before = |block: &[u8]| {
+        let before = breaks;
+        breaks += u32::try_from(line_breaks(block)).unwrap_or(0);
+        before
+    };
+    text.as_bytes().chunks(BLOCK).map(before).collect()
 }
 
-impl<'a> Lines<'a> {
-    fn new(json: Json<'a>) -> Self {
-        Self { json, at: 0, line: 1 }
-    }
-
-    fn of(&mut self, piece: Raw<'_>) -> usize {
-        let at = self.json.offset(piece);
-        let between = self.json.text.as_bytes().get(self.at..at).unwrap_or_default();
-        self.line += between.iter().filter(|byte| **byte == b'\n').count();
-        self.at = self.at.max(at);
-        self.line
-    }
+fn line_breaks(bytes: &[u8]) -> usize {
+    bytes.iter().filter(|byte| **byte == b'\n').count()
 }
 
 /// Objects that describe, and hold no table even if their lists look like columns.

@@ -66,14 +66,14 @@ impl<'a> Raw<'a> {
     }
 
     /// Keys and values of an object, in their order; `None` for anything else, and for more than a table can have.
-    pub fn fields(self) -> Option<Vec<(String, Self)>> {
+    pub fn fields(self) -> Option<Vec<(Cow<'a, str>, Self)>> {
         let mut scan = self.inside(b'{')?;
         let mut fields = Vec::new();
         while scan.next_item(b'}')? {
             let key = self.cut(scan.value().ok()?).string()?;
             scan.blanks();
             scan.at += 1;
-            fields.push((key.into_owned(), self.cut(scan.value().ok()?)));
+            fields.push((key, self.cut(scan.value().ok()?)));
             if fields.len() > MOST_ITEMS {
                 return None;
             }
@@ -349,7 +349,7 @@ mod tests {
         assert_eq!(texts(Raw::of("[]")), Some(vec![]));
         assert_eq!(texts(Raw::of("{}")), None);
         let fields = Raw::of("{ \"a b\" : {\"c\": 1} , \"d\\\"\":2}").ok().and_then(Raw::fields).unwrap_or_default();
-        let fields: Vec<(&str, &str)> = fields.iter().map(|(key, value)| (key.as_str(), value.text())).collect();
+        let fields: Vec<(&str, &str)> = fields.iter().map(|(key, value)| (key.as_ref(), value.text())).collect();
         assert_eq!(fields, [("a b", "{\"c\": 1}"), ("d\"", "2")]);
         let string = |text: &'static str| Raw::of(text).ok().and_then(Raw::string).map(Cow::into_owned);
         assert_eq!(string("\"a\\t\\u00e9\\ud83d\\ude00\\/\\\\ z\""), Some("a\té😀/\\ z".into()));
