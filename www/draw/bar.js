@@ -11,7 +11,7 @@ import { colourOfShare, cssColour, lineColour } from "./scale.js";
  * @param {Surroundings} around
  */
 export function paintBar(canvas, picture, around) {
-  const opened = openCanvas(canvas, around.ratio);
+  const opened = openCanvas(canvas, around);
   if (opened === null) return;
   const { pen, width, height } = opened;
   for (let x = 0; x < width; x++) {

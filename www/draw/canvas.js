@@ -3,10 +3,13 @@
 /** @import { Theme } from "./scale.js" */
 
 /**
- * @typedef {{ ink: string, paper: string, theme: Theme, font: string, ratio: number }} Surroundings
+ * `wide` is how many CSS pixels across a picture is drawn; null where its place on the page tells.
+ * @typedef {{ ink: string, paper: string, theme: Theme, font: string, ratio: number, wide: number | null }} Surroundings
  */
 
 const PRINT_RATIO = 3;
+/** Not every browser has laid the page out for paper when it asks for the pictures; there they are 54 mm wide. */
+const PRINT_WIDE = 204;
 
 /** @param {string} colour as computed style gives it */
 function luminanceOf(colour) {
@@ -24,7 +27,14 @@ export function surroundingsOf(canvas, printing) {
   const style = getComputedStyle(canvas);
   const font = style.fontFamily;
   if (printing)
-    return { ink: "rgb(20, 20, 20)", paper: "rgb(255, 255, 255)", theme: "light", font, ratio: PRINT_RATIO };
+    return {
+      ink: "rgb(20, 20, 20)",
+      paper: "rgb(255, 255, 255)",
+      theme: "light",
+      font,
+      ratio: PRINT_RATIO,
+      wide: PRINT_WIDE,
+    };
   const dark = luminanceOf(style.color) > 0.5;
   return {
     ink: style.color,
@@ -32,6 +42,7 @@ export function surroundingsOf(canvas, printing) {
     theme: dark ? "dark" : "light",
     font,
     ratio: devicePixelRatio || 1,
+    wide: null,
   };
 }
 
@@ -39,16 +50,17 @@ export function surroundingsOf(canvas, printing) {
  * Sizes the bitmap to the canvas's place on the page; drawing then happens in CSS pixels, or in smaller ones where the
  * place is narrower than what is drawn needs.
  * @param {HTMLCanvasElement} canvas
- * @param {number} ratio
+ * @param {Surroundings} around
  * @param {number} [least] the width that is needed
  */
-export function openCanvas(canvas, ratio, least = 0) {
-  const shrink = shrinkOf(canvas, least);
+export function openCanvas(canvas, { ratio, wide }, least = 0) {
+  const shrink = wide === null ? shrinkOf(canvas, least) : wide / Math.max(1, canvas.clientWidth);
   const width = canvas.clientWidth * shrink;
   const height = canvas.clientHeight * shrink;
   const pen = canvas.getContext("2d");
   if (pen === null || width === 0 || height === 0) return null;
-  const [across, down] = [Math.round(canvas.clientWidth * ratio), Math.round(canvas.clientHeight * ratio)];
+  const dense = wide === null ? ratio / shrink : ratio;
+  const [across, down] = [Math.round(width * dense), Math.round(height * dense)];
   // Giving a canvas the size it has is slow.
   if (canvas.width !== across || canvas.height !== down) Object.assign(canvas, { width: across, height: down });
   else pen.reset();

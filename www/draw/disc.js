@@ -112,7 +112,7 @@ function tracePoints(pen, points, closed) {
  * @param {Surroundings} around
  */
 export function paintDisc(canvas, content, around) {
-  const opened = openCanvas(canvas, around.ratio);
+  const opened = openCanvas(canvas, around);
   if (opened === null) return;
   const { pen, width, height } = opened;
   const { picture, role } = content;

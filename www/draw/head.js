@@ -106,7 +106,7 @@ export function electrodeOnHead(canvas, { figure, from }, x, y, reach) {
  * @param {Surroundings} around
  */
 export function paintHead(canvas, content, around) {
-  const opened = openCanvas(canvas, around.ratio, LEAST_WIDTH);
+  const opened = openCanvas(canvas, around, LEAST_WIDTH);
   if (opened === null) return;
   const { pen, width, height } = opened;
   const { figure, electrodes, pointed, letters } = content;

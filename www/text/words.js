@@ -224,16 +224,16 @@ export function shellLabel(part, shell) {
   return `${word(`head.${part}`)}, shell ${shell}`;
 }
 
-/** @param {string} stretch the left-over map's own factor, or empty */
-export function scaleText(stretch) {
-  const shared =
-    stretch === "" ? word("scale.shared") : `${word("scale.shared")}; ${word("map.residual")} drawn ${stretch}`;
-  return `${shared}. ${word("scale.lines")}.`;
-}
-
 /** A unit to stand at every value: a symbol; words would be noise there. @param {string} unit */
 export function symbolOf(unit) {
   return unit.includes(" ") ? "" : unit;
+}
+
+/** @param {string} unit of the scale @param {string} stretch the left-over map's own factor, or empty */
+export function scaleText(unit, stretch) {
+  const shared = symbolOf(unit) === "" ? `${word("scale.shared")}, in ${unit}` : word("scale.shared");
+  const own = stretch === "" ? "" : `; ${word("map.residual")} drawn ${stretch}`;
+  return `${shared}${own}. ${word("scale.lines")}.`;
 }
 
 /**

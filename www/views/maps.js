@@ -7,7 +7,7 @@ import { paintBar } from "../draw/bar.js";
 import { surroundingsOf } from "../draw/canvas.js";
 import { electrodeOnDisc, paintDisc } from "../draw/disc.js";
 import { stretchText, typeset } from "../text/figures.js";
-import { electrodeText, scaleText, usedText, word } from "../text/words.js";
+import { electrodeText, scaleText, symbolOf, usedText, word } from "../text/words.js";
 import { need } from "./element.js";
 import { keepPainted } from "./surface.js";
 
@@ -149,11 +149,13 @@ export function showMaps(session) {
       if (!sheet) return;
       const { picture, alt, scale, electrodes } = sheet;
       for (const { role, canvas } of discs) canvas.setAttribute("aria-label", typeset(alt[role]));
-      need("scale-low", HTMLElement).textContent = `\u2212${scale.limit}`;
-      need("scale-high", HTMLElement).textContent = `+${scale.limit} ${scale.unit}`;
+      /** @param {string} sign */
+      const end = (sign) => typeset(`${sign}${scale.limit} ${symbolOf(scale.unit)}`.trim());
+      need("scale-low", HTMLElement).textContent = end("-");
+      need("scale-high", HTMLElement).textContent = end("+");
       const stretched = picture.stretch === 1 ? "" : stretchText(picture.stretch);
       need("stretch", HTMLElement).textContent = stretched;
-      need("scale-words", HTMLElement).textContent = scaleText(stretched);
+      need("scale-words", HTMLElement).textContent = scaleText(scale.unit, stretched);
       const changed = electrodes.find(({ label }) => label === changing);
       if (changed !== undefined) said.textContent = usedText(changed, electrodes);
       changing = null;
