@@ -4,6 +4,7 @@ use crate::place::dist_file;
 use base64::Engine;
 use base64::engine::general_purpose::STANDARD;
 use sha2::{Digest, Sha256};
+use std::io::Write;
 use std::path::PathBuf;
 
 /// The text of the page with changes made to it.
@@ -22,7 +23,11 @@ impl Variant {
 
     /// Puts script text in front of the workers' script.
     pub fn before_worker(self, script: &str) -> Self {
-        self.after(&["<script", "id=\"worker\"", ">"], script)
+        let (start, end) = self.carried("worker");
+        let mut packer = flate2::write::GzEncoder::new(Vec::new(), flate2::Compression::fast());
+        write!(packer, "{script}\n{}", self.worker()).expect("memory takes it");
+        let packed = STANDARD.encode(packer.finish().expect("memory takes it"));
+        Self(format!("{}{packed}{}", &self.0[..start], &self.0[end..]))
     }
 
     /// Adds script text to the page's own script and admits the longer script in the policy.
@@ -70,15 +75,18 @@ impl Variant {
         tag + self.0[tag..].find('>').expect("a tag ends") + 1
     }
 
-    fn after(self, marks: &[&str], added: &str) -> Self {
-        let tag = self
-            .0
-            .match_indices(marks[0])
-            .map(|(at, _)| at)
-            .find(|&at| self.0[at..].split_once(marks[2]).is_some_and(|(tag, _)| tag.contains(marks[1])))
-            .expect("the page has that script");
-        let at = tag + self.0[tag..].find(marks[2]).expect("a tag ends") + marks[2].len();
-        Self(format!("{}\n{added}\n{}", &self.0[..at], &self.0[at..]))
+    /// Where the base64 of what the page carries under this id starts and ends.
+    fn carried(&self, id: &str) -> (usize, usize) {
+        let tag = self.0.find(&format!("id=\"{id}\">")).expect("the page carries that");
+        let start = tag + self.0[tag..].find('>').expect("a tag ends") + 1;
+        (start, start + self.0[start..].find('<').expect("the script ends"))
+    }
+
+    /// The worker's script.
+    pub fn worker(&self) -> String {
+        let (start, end) = self.carried("worker");
+        let packed = STANDARD.decode(self.0[start..end].trim()).expect("base64");
+        std::io::read_to_string(flate2::read::GzDecoder::new(&packed[..])).expect("gzip of a script")
     }
 }
 

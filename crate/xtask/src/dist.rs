@@ -35,13 +35,13 @@ pub fn build(workspace: &Workspace) -> Result<Dist> {
     let carried = BASE64_STANDARD.encode(gzip(&compiled.wasm)?);
     let script = page_script(&modules.join("main.js")?)?;
     let worker = worker_script(&modules.join("engine/worker.js")?, &compiled.glue)?;
-    let notices = BASE64_STANDARD.encode(gzip(notices(workspace)?.as_bytes())?);
+    let packed = |text: &str| gzip(text.as_bytes()).map(|bytes| BASE64_STANDARD.encode(bytes));
     let parts = Parts {
         style: &styles(&www.join("style"))?,
         script: &script,
-        worker: &worker,
+        worker: &packed(&worker)?,
         wasm: &carried,
-        notices: &notices,
+        notices: &packed(&notices(workspace)?)?,
         examples: &examples(&workspace.root.join("example_maps"))?,
     };
     let page = page(&read(&www.join("index.html"))?, &parts)?;
@@ -62,13 +62,32 @@ fn styles(folder: &Path) -> Result<String> {
     let mut joined = String::new();
     for path in files(folder)? {
         if path.extension().is_some_and(|extension| extension == "css") {
-            joined += &read(&path)?;
+            joined += &without_comments(&read(&path)?);
         }
     }
     Ok(joined)
 }
 
+/// A style sheet without comments and indentation; no string in it holds either.
+fn without_comments(style: &str) -> String {
+    let mut parts = style.split("/*");
+    let mut bare = parts.next().unwrap_or_default().to_owned();
+    bare.extend(parts.filter_map(|part| part.split_once("*/")).map(|(_, after)| after));
+    bare.lines().map(str::trim).filter(|line| !line.is_empty()).flat_map(|line| [line, "\n"]).collect()
+}
+
 fn write(path: &Path, text: &str) -> Result<()> {
     std::fs::create_dir_all(path.parent().unwrap_or(path))?;
     std::fs::write(path, text).with_context(|| path.display().to_string())
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn style_sheets_lose_comments_and_indentation_only() {
+        let style = "/* a */\np {\n  margin: 0; /* b\n c */ top: 0;\n}\n\n";
+        assert_eq!(without_comments(style), "p {\nmargin: 0;  top: 0;\n}\n");
+    }
 }

@@ -10,7 +10,7 @@ pub struct Parts<'a> {
     pub style: &'a str,
     /// The page's own script.
     pub script: &'a str,
-    /// The worker's script, as text.
+    /// The worker's script, compressed, in base64.
     pub worker: &'a str,
     /// The compressed module in base64, as text.
     pub wasm: &'a str,

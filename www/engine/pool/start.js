@@ -1,5 +1,6 @@
 /** Starts the engine of the page from what the file carries: compiles once, hands the module to workers. */
 
+import { unpacked } from "../../text/packed.js";
 import { compileWasm } from "../wasm.js";
 import { lacksMemory } from "../fault.js";
 import { makeClient } from "./client.js";
@@ -40,7 +41,7 @@ export async function startClient() {
     throw unavailable(code, error);
   }
   try {
-    const script = new Blob([carriedText("worker")], { type: "text/javascript" });
+    const script = new Blob([await unpacked(carriedText("worker")).text()], { type: "text/javascript" });
     const address = workerAddresses().createScriptURL(URL.createObjectURL(script));
     return makeClient(module, () => new Worker(address));
   } catch (error) {
