@@ -20,6 +20,8 @@ import { showNumbers } from "./views/numbers.js";
 import { showSign } from "./views/sign.js";
 import { showStatus } from "./views/status.js";
 import { showTerms } from "./views/terms.js";
+import { showUnderstood } from "./views/understood.js";
+import { showUndo } from "./views/undo.js";
 
 const session = makeSession();
 
@@ -44,7 +46,9 @@ for (const show of [
   showNumbers,
   showElectrodes,
   showHead,
+  showUnderstood,
   showNotes,
+  showUndo,
   showColophon,
   showTerms,
 ]) {
@@ -54,6 +58,11 @@ takeDropsAndPastes(session, need("drop", HTMLElement));
 
 startClient()
   .then(async (client) =>
-    session.engineReady(client, await client.ask({ kind: "program" }), await client.ask({ kind: "heads" })),
+    session.engineReady(
+      client,
+      await client.ask({ kind: "program" }),
+      await client.ask({ kind: "heads" }),
+      await client.ask({ kind: "choices" }),
+    ),
   )
   .catch((error) => session.fail(error));

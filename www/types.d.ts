@@ -40,6 +40,9 @@ interface ReportHead {
   fit_rms_mm: number;
   fit_max_mm: number;
   shells: { tissue: string; outer_radius_mm: number; conductivity_s_per_m: number }[];
+  unusual: boolean;
+  /** The canonical x, y and z in the frame of the table. */
+  axes: number[][];
 }
 
 /** Every setting is optional; the engine refuses what it does not know. */
@@ -105,7 +108,7 @@ interface Understood {
 interface UnderstoodFile {
   name: string;
   part: string | null;
-  role: string;
+  role: FileRole;
   format: string;
   encoding: string | null;
   rows: number;
@@ -181,6 +184,17 @@ interface UnfittedMap {
 }
 
 type ReportMap = FittedMap | UnfittedMap;
+
+interface ChoiceOption {
+  value: ChoiceValue;
+  label: string;
+}
+
+/** A choice among fixed options. */
+interface ChoiceOffer {
+  setting: string;
+  options: ChoiceOption[];
+}
 
 interface InwardReport {
   format: "inward-report";
@@ -265,6 +279,9 @@ interface Figure {
   axis: boolean;
 }
 
+/** A head without a dipole, or with one. */
+type HeadFigure = Omit<Figure, "dipole"> & { dipole: Figure["dipole"] | null };
+
 type HeadView = "above" | "behind" | "left" | "turned";
 
 interface Sheet {
@@ -304,7 +321,10 @@ interface Glue {
   open(request: EngineRequest): GlueStudy;
   /** What a table is, by its content. */
   kindOf(content: InwardContent): InputKind;
+  /** What a file is, by its content. */
+  roleOf(name: string, content: InwardContent): FileRole;
   heads(): CatalogueHead[];
+  choices(): ChoiceOffer[];
   program(): Program;
 }
 
@@ -337,6 +357,8 @@ interface Engine {
   analyse(request: EngineRequest): InwardReport;
   open(request: EngineRequest): Study;
   kindOf(content: InwardContent): InputKind;
+  roleOf(name: string, content: InwardContent): FileRole;
+  choices(): ChoiceOffer[];
   program(): Program;
 }
 
@@ -359,7 +381,8 @@ interface ChangedRequest {
 type WorkerTask =
   | { kind: "program" }
   | { kind: "heads" }
-  | { kind: "kindOf"; content: InwardContent }
+  | { kind: "choices" }
+  | { kind: "roleOf"; name: string; content: InwardContent }
   | { kind: "open"; key: number; request?: EngineRequest | ChangedRequest }
   | { kind: "fitAll"; key: number; request?: EngineRequest | ChangedRequest }
   | { kind: "sheet"; key: number; request?: EngineRequest | ChangedRequest; index: number }
@@ -404,9 +427,37 @@ interface Input {
   /** The file's name, or empty when pasted or typed. */
   name: string;
   content: InwardContent;
+  /** What it is by its content; none where it was not looked at or cannot be read. */
+  role?: FileRole;
 }
 
 type InputKind = "electrodes" | "maps";
+
+type FileRole =
+  | "electrodes"
+  | "maps"
+  | "electrodes-and-maps"
+  | "labels"
+  | "channels"
+  | "coordinates"
+  | "sphering"
+  | "times"
+  | "unused";
+
+/** Two boxes, and all that stands beside them. */
+interface Inputs extends Record<InputKind, Input | null> {
+  others: Input[];
+}
+
+/** Inputs and settings before a change. */
+interface Step {
+  inputs: Inputs;
+  settings: PageSettings;
+  example: ExampleTitle | null;
+  setAside: SessionState["setAside"];
+  /** What the change was of. */
+  what: string[];
+}
 
 type Phase = "loading" | "ready" | "busy" | "answered" | "failed";
 
@@ -417,7 +468,7 @@ interface Answer {
   key: number;
   names: Record<InputKind, string | null>;
   /** The tables it was computed from. */
-  inputs: Record<InputKind, Input | null>;
+  inputs: Inputs;
   /** The invented map that it answers. */
   example: ExampleTitle | null;
   /** The settings it was computed with. */
@@ -435,15 +486,22 @@ interface Answer {
 interface SessionState {
   phase: Phase;
   program: Program | null;
-  inputs: Record<InputKind, Input | null>;
+  inputs: Inputs;
   settings: PageSettings;
   /** Which settings were changed last; none when the inputs were. */
   changed: string[];
+  /** Changes that can be undone, the last one last. */
+  past: Step[];
+  /** Files that gave way with the last change, and settings that went with them. */
+  said: { replaced: string[]; dropped: string[] } | null;
+  /** Files that came in and led to no answer, while those of the answer stay. */
+  refused: { inputs: Inputs; settings: PageSettings } | null;
   heads: CatalogueHead[];
+  offers: ChoiceOffer[];
   /** The invented map that was put in. */
   example: ExampleTitle | null;
   /** What the invented map has replaced. */
-  setAside: { inputs: Record<InputKind, Input | null>; settings: PageSettings } | null;
+  setAside: { inputs: Inputs; settings: PageSettings } | null;
   answer: Answer | null;
   failure: Fault | null;
   /** Label of the electrode that is pointed at, wherever on the page. */

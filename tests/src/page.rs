@@ -238,15 +238,23 @@ impl Page {
         self.session.type_keys(&self.find(selector), &file.display().to_string()).unwrap();
     }
 
-    /// Drops files somewhere on the page.
+    /// Drops files of text somewhere on the page.
     pub fn drop_files(&self, files: &[DroppedFile<'_>]) {
+        let files: Vec<(&str, &[u8])> = files.iter().map(|file| (file.name, file.text.as_bytes())).collect();
+        self.drop_bytes(&files);
+    }
+
+    /// Drops files by name and content somewhere on the page.
+    pub fn drop_bytes(&self, files: &[(&str, &[u8])]) {
         let script = "\
             const data = new DataTransfer();\
-            for (const [name, text] of arguments[0]) data.items.add(new File([text], name, { type: 'text/plain' }));\
+            const bytes = (text) => Uint8Array.from(atob(text), (letter) => letter.charCodeAt(0));\
+            for (const [name, text] of arguments[0]) data.items.add(new File([bytes(text)], name));\
             const target = document.querySelector('main') ?? document.body;\
             for (const kind of ['dragenter', 'dragover', 'drop'])\
               target.dispatchEvent(new DragEvent(kind, { dataTransfer: data, bubbles: true, cancelable: true, composed: true }));";
-        let files: Vec<Value> = files.iter().map(|file| json!([file.name, file.text])).collect();
+        let coded = |bytes| base64::Engine::encode(&base64::engine::general_purpose::STANDARD, bytes);
+        let files: Vec<Value> = files.iter().map(|(name, bytes)| json!([name, coded(*bytes)])).collect();
         self.ask(script, &[json!(files)]);
     }
 

@@ -112,7 +112,8 @@ fn the_download_is_the_report(browser: Browser) {
     assert_eq!(report["version"], 1);
     let keys: Vec<&String> = report.as_object().unwrap().keys().collect();
     let mut expected =
-        ["electrodes", "format", "head", "inputs", "maps", "notes", "program", "settings", "version"].map(String::from);
+        ["electrodes", "format", "head", "inputs", "maps", "notes", "program", "settings", "understood", "version"]
+            .map(String::from);
     expected.sort();
     assert_eq!(keys, expected.iter().collect::<Vec<_>>());
     let hashes: Vec<&str> =

@@ -4,7 +4,7 @@
  */
 
 import { openCanvas, shrinkOf } from "./canvas.js";
-import { letterFont, markDipole, markElectrode, markPointed, writeHaloed } from "./marks.js";
+import { letterFont, markDipole, markElectrode, markPointed, shortLabel, writeHaloed } from "./marks.js";
 
 /** @import { Surroundings } from "./canvas.js" */
 
@@ -19,6 +19,8 @@ const LEAST_WIDTH = 200;
 /** Half of the dipole's line over the radius of the scalp, and the least of it in CSS pixels. */
 const HALF_MOMENT = 0.2;
 const LEAST_MOMENT = 17;
+/** CSS pixels from a named electrode to the middle of its label, upwards. */
+const LABEL_GAP = 9;
 const FAR_ALPHA = 0.28;
 const CIRCLE_STEPS = 96;
 
@@ -31,12 +33,13 @@ const CIRCLE_STEPS = 96;
 
 /**
  * @typedef {object} HeadContent
- * @property {Figure} figure
+ * @property {HeadFigure} figure
  * @property {DiscElectrode[]} electrodes
  * @property {number} pointed the electrode pointed at, or -1
  * @property {Standpoint} from
  * @property {{ side: Side, text: string }[]} letters
  * @property {string} seen written below
+ * @property {number[]} [named] electrodes of the near side with their labels
  */
 
 /** @type {Record<Side, number[]>} */
@@ -137,6 +140,17 @@ export function paintHead(canvas, content, around) {
   paintSide(false);
   paintMoment(pen, place, radius, figure, around);
   paintSide(true);
+  for (const at of content.named ?? []) {
+    const { x, y, z } = place(figure.electrodes[at]);
+    if (z < -1e-9) continue;
+    // Towards the middle, and above what stands there.
+    const label = shortLabel(electrodes[at].label);
+    const [dx, dy] = [middle - x, centre - y];
+    const distance = Math.hypot(dx, dy);
+    const away = distance < LABEL_GAP ? [0, -1] : [dx / distance, dy / distance];
+    const across = LABEL_GAP / 2 + pen.measureText(label).width / 2;
+    writeHaloed(pen, label, x + across * away[0], y + LABEL_GAP * away[1], width, around);
+  }
 
   pen.fillStyle = around.ink;
   writeHaloed(pen, content.seen, middle, height - 7, width, around);
@@ -152,7 +166,7 @@ export function paintHead(canvas, content, around) {
  * @param {number} middle
  * @param {number} centre
  * @param {number} radius
- * @param {Figure} figure
+ * @param {HeadFigure} figure
  * @param {Surroundings} around
  */
 function paintShells(pen, middle, centre, radius, { shells }, around) {
@@ -240,10 +254,11 @@ function paintPeg(pen, place, radius, { side, text }, near, width, around) {
  * @param {CanvasRenderingContext2D} pen
  * @param {(point: number[]) => { x: number, y: number, z: number }} place
  * @param {number} radius
- * @param {Figure} figure
+ * @param {HeadFigure} figure
  * @param {Surroundings} around
  */
 function paintMoment(pen, place, radius, { dipole, axis }, around) {
+  if (dipole === null) return;
   const { position, direction } = dipole;
   const { x, y } = place(position);
   const distance = Math.hypot(...position);

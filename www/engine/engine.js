@@ -168,6 +168,8 @@ export function makeEngine(compiled) {
     analyse: (request) => call((current) => current.analyse(request)),
     open: (request) => studyOn(request, () => keepRequest(request)),
     kindOf: (content) => call((current) => current.kindOf(content)),
+    roleOf: (name, content) => call((current) => current.roleOf(name, content)),
+    choices: () => call((current) => current.choices()),
     program: () => call((current) => current.program()),
   };
 }

@@ -108,8 +108,10 @@ async function answerTask(message) {
       return self.postMessage({ id, value: workerEngine.program() });
     case "heads":
       return self.postMessage({ id, value: workerEngine.heads });
-    case "kindOf":
-      return self.postMessage({ id, value: workerEngine.kindOf(message.content) });
+    case "choices":
+      return self.postMessage({ id, value: workerEngine.choices() });
+    case "roleOf":
+      return self.postMessage({ id, value: workerEngine.roleOf(message.name, message.content) });
     case "open": {
       const study = studyOf(message.key);
       return self.postMessage({ id, value: { preamble: study.preamble(), count: study.count } });

@@ -1,6 +1,6 @@
 /** The whole page takes drops; text pasted outside of a field is taken too. */
 
-import { inputOfFile, sortInputs } from "./files.js";
+import { inputOfFile } from "./files.js";
 
 /** @import { Session } from "../session/session.js" */
 
@@ -15,17 +15,15 @@ async function inputsOfTransfer(transfer) {
 /** @param {Session} session @param {DataTransfer | null} transfer */
 async function takeTransfer(session, transfer) {
   try {
-    const inputs = await inputsOfTransfer(transfer);
-    const kinds = await Promise.all(inputs.map((input) => session.kindOf(input.content)));
-    if (inputs.length > 0) session.put(sortInputs(inputs, kinds));
+    await session.add(await inputsOfTransfer(transfer));
   } catch (error) {
     session.fail(error);
   }
 }
 
 /** @param {EventTarget | null} target */
-function isTextField(target) {
-  return target instanceof HTMLElement && target.matches("textarea, input[type=number]");
+export function isTextField(target) {
+  return target instanceof HTMLElement && target.matches("textarea, input[type=number], input[type=text]");
 }
 
 /**

@@ -6,10 +6,23 @@ const SHOW_CHARACTERS = 1 << 18;
 /** The engine reads no more; a larger file need not be loaded to be refused. */
 const MOST_BYTES = 64 << 20;
 
-/** What a text field shows of an input; null when it is too long for one. @param {Input} input */
-export function shownText(input) {
-  if (input.content.length > SHOW_CHARACTERS) return null;
-  return typeof input.content === "string" ? input.content : new TextDecoder().decode(input.content);
+/** Bytes that are looked at to tell text from other content. */
+const SAMPLE_BYTES = 4096;
+
+/** The encoding of bytes as far as showing them goes; null for what is no text. @param {Uint8Array} bytes */
+function shownEncoding(bytes) {
+  const [first, second] = bytes;
+  if (first === 0xff && second === 0xfe) return "utf-16le";
+  if (first === 0xfe && second === 0xff) return "utf-16be";
+  return bytes.subarray(0, SAMPLE_BYTES).includes(0) ? null : "utf-8";
+}
+
+/** What a text field shows of an input; null when it is too long for one, or no text. @param {Input} input */
+export function shownText({ content }) {
+  if (content.length > SHOW_CHARACTERS) return null;
+  if (typeof content === "string") return content;
+  const encoding = shownEncoding(content);
+  return encoding === null ? null : new TextDecoder(encoding).decode(content);
 }
 
 /** @param {File} file @returns {Promise<Input>} */
@@ -25,10 +38,4 @@ export async function inputOfFile(file) {
 /** @param {string} code @param {string} details */
 function fileFault(code, details) {
   return Object.assign(new Error(""), { code, details });
-}
-
-/** Puts what came in together in its places; one of a kind. @param {Input[]} inputs @param {InputKind[]} kinds */
-export function sortInputs(inputs, kinds) {
-  if (new Set(kinds).size < kinds.length) throw Object.assign(new Error(""), { code: "inputs-same-kind" });
-  return Object.fromEntries(inputs.map((input, at) => [kinds[at], input]));
 }

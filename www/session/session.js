@@ -6,8 +6,10 @@
 import { makeStore } from "./store.js";
 import { faultOf } from "../engine/fault.js";
 import { pageFault } from "../text/faults.js";
-import { firstLine, FIRST_SETTINGS, isOtherTable, sentSettings, settingsForOther } from "./settings.js";
-import { withTurned, withValueAt } from "./settings.js";
+import { heldBytes, isEmpty, namedFiles, NO_INPUTS, placedInputs, toldRoles } from "./inputs.js";
+import { isUnreadable } from "./help.js";
+import { differingSettings, firstLine, FIRST_SETTINGS, isOtherTable, sentSettings, settingsForOther } from "./settings.js";
+import { settingsOfFiles, settingsWith, withTurned, withValueAt } from "./settings.js";
 
 /** @import { EngineClient } from "../engine/pool/client.js" */
 
@@ -16,15 +18,33 @@ import { withTurned, withValueAt } from "./settings.js";
 /** @type {InputKind[]} */
 const KINDS = ["electrodes", "maps"];
 
+/** Steps that can be undone, and bytes of files that are kept for them. */
+const MOST_STEPS = 50;
+const MOST_PAST_BYTES = 2 ** 27;
+
+/** Whether a setting says what a file is. @param {string[]} path */
+function isRole(path) {
+  return path[0] === "files" && path[2] === "role";
+}
+
+/** @param {SessionState} state @returns {Step} */
+function stepOf({ inputs, settings, example, setAside }) {
+  return { inputs, settings, example, setAside, what: [] };
+}
+
 export function makeSession() {
   const store = makeStore(
     /** @type {SessionState} */ ({
       phase: "loading",
       program: null,
-      inputs: { electrodes: null, maps: null },
+      inputs: NO_INPUTS,
       settings: FIRST_SETTINGS,
       changed: [],
+      past: [],
+      said: null,
+      refused: null,
       heads: [],
+      offers: [],
       example: null,
       setAside: null,
       answer: null,
@@ -69,10 +89,102 @@ export function makeSession() {
     pending = null;
   }
 
+  /**
+   * One change of inputs or settings, which can be undone.
+   * @param {Partial<SessionState>} patch
+   * @param {string[]} what changes: settings by name, or "input"
+   */
+  function step(patch, what) {
+    const state = store.read();
+    const steps = [...state.past.slice(1 - MOST_STEPS), { ...stepOf(state), what }];
+    while (steps.length > 1 && heldBytes(steps.map(({ inputs }) => inputs)) > MOST_PAST_BYTES) steps.shift();
+    store.write({ past: steps, said: null, refused: null, changed: [], ...patch });
+  }
+
+  /** Inputs that came as a whole and led to no answer give way to those of the answer. @param {SessionState} before */
+  function refuse({ inputs, settings, example, setAside, past, said }) {
+    const { inputs: refusedInputs, settings: refusedSettings } = store.read();
+    const refused = { inputs: refusedInputs, settings: refusedSettings };
+    store.write({ inputs, settings, example, setAside, past, said, refused });
+  }
+
+  /**
+   * Other inputs, with what of the settings outlives the exchange.
+   * @param {Inputs} inputs
+   * @param {Input[]} [replaced]
+   */
+  function exchange(inputs, replaced = []) {
+    const { inputs: held, settings, example } = store.read();
+    const other = KINDS.filter((kind) => held[kind] !== inputs[kind] && isOtherTable(held[kind], inputs[kind]));
+    const names = namedFiles(inputs).map(({ name }) => name);
+    const kept = settingsOfFiles(settingsForOther(settings, example === null ? other : KINDS), names);
+    const dropped = differingSettings(settings, kept);
+    step(
+      {
+        inputs,
+        settings: example === null ? kept : { ...kept, mapUnit: FIRST_SETTINGS.mapUnit },
+        example: null,
+        setAside: null,
+        said: { replaced: example === null ? replaced.map(({ name }) => name) : [], dropped },
+      },
+      ["input"],
+    );
+  }
+
+  /**
+   * Files come in, each to its place; what cannot be read goes to the maps, where reading it says what is wrong.
+   * @param {Input[]} given
+   */
+  function takeIn(given) {
+    const before = store.read();
+    const { inputs, replaced } = placedInputs(before.example === null ? before.inputs : NO_INPUTS, given);
+    exchange(inputs, replaced);
+    ask(before);
+  }
+
+  /**
+   * Adds files that were refused, one of them as something else, to those of the answer.
+   * @param {string[]} path of the setting
+   * @param {FileRole | undefined} role
+   * @param {NonNullable<SessionState["refused"]>} refused
+   */
+  function addAs(path, role, refused) {
+    const before = store.read();
+    const { inputs: held, example } = before;
+    const known = namedFiles(held).map(({ input }) => input);
+    const given = namedFiles(refused.inputs)
+      .filter(({ input }) => !known.includes(input))
+      .map(({ name, input }) => (name === path[1] && role !== undefined ? { ...input, name, role } : input));
+    const { inputs, replaced } = placedInputs(example === null ? held : NO_INPUTS, given);
+    exchange(inputs, replaced);
+    const { settings } = store.read();
+    const files = { ...settings.files, ...refused.settings.files };
+    store.write({ settings: settingsWith({ ...settings, files }, path, role) });
+    ask(before);
+  }
+
+  /** Puts a file in the place of what it is said to be. @param {string} name @param {FileRole | undefined} role */
+  function placeAnew(name, role) {
+    const { inputs } = store.read();
+    const file = namedFiles(inputs).find((one) => one.name === name);
+    if (file === undefined || role === undefined) return;
+    /** @param {Input | null} input */
+    const without = (input) => (input === file.input ? null : input);
+    const rest = {
+      maps: without(inputs.maps),
+      electrodes: without(inputs.electrodes),
+      others: inputs.others.filter((one) => one !== file.input),
+    };
+    const { inputs: now, replaced } = placedInputs(rest, [{ ...file.input, name, role }]);
+    store.write({ inputs: now, said: { replaced: replaced.map((input) => input.name), dropped: [] } });
+  }
+
   /** Asks the engine about the present inputs; an older question nobody waits for any more is given up. */
-  async function ask() {
+  /** @param {SessionState} [earlier] what to go back to if inputs that came as a whole lead to no answer */
+  async function ask(earlier) {
     if (client === null) return;
     const { inputs, settings, example, answer: before } = store.read();
+    const back = earlier !== undefined && (before === null || earlier.inputs === before.inputs) ? earlier : null;
     // The worker has read these tables for the present answer: it needs no more than the other settings.
     const from = before?.inputs === inputs ? before.key : null;
     dropPending(from === null);
@@ -82,8 +194,10 @@ export function makeSession() {
       return;
     }
     /** @type {EngineRequest} */
-    const request = { maps: inputs.maps.content, settings: sentSettings(settings) };
-    if (inputs.electrodes !== null) request.electrodes = inputs.electrodes.content;
+    const request = {
+      files: namedFiles(inputs).map(({ name, input }) => ({ name, content: input.content })),
+      settings: sentSettings(settings, toldRoles(inputs)),
+    };
     const key = client.name(request, from);
     pending = key;
     store.write({ phase: "busy", failure: null, progress: null, stopped: false });
@@ -106,6 +220,9 @@ export function makeSession() {
       if (pending === key) {
         pending = null;
         client.forget(key);
+        const { code } = /** @type {Fault} */ (fault);
+        // Without an answer only what cannot be read at all goes again; tables stay, to be mended.
+        if (back !== null && code !== "given-up" && (before !== null || isUnreadable(code))) refuse(back);
         fail(fault);
       } else if (store.read().answer?.key === key) {
         fail(fault);
@@ -168,40 +285,63 @@ export function makeSession() {
      * @param {EngineClient} ready
      * @param {Program} program
      * @param {CatalogueHead[]} heads
+     * @param {ChoiceOffer[]} offers
      */
-    engineReady(ready, program, heads) {
+    engineReady(ready, program, heads, offers) {
       client = ready;
       announce(ready);
-      store.write({ phase: store.read().phase === "failed" ? "failed" : "ready", program, heads });
+      store.write({ phase: store.read().phase === "failed" ? "failed" : "ready", program, heads, offers });
       if (store.read().inputs.maps !== null) ask();
     },
 
     /**
-     * What a table is, by its content; told as soon as the engine runs.
-     * @param {InwardContent} content
-     * @returns {Promise<InputKind>}
+     * The input with what it is by its content, told as soon as the engine runs; without it where it cannot be read.
+     * @param {Input} input
+     * @returns {Promise<Input>}
      */
-    async kindOf(content) {
+    async recognised(input) {
       const engine = await started;
-      return engine.ask({ kind: "kindOf", content });
+      /** @type {FileRole | undefined} */
+      const role = await engine.ask({ kind: "roleOf", name: input.name, content: input.content }).catch(() => undefined);
+      return { ...input, role };
     },
 
     /**
-     * One or both inputs at once; null takes an input away. An invented map gives way as a whole.
+     * Files in any order, told apart by their content. What was there for the same purpose gives way, and an invented
+     * map as a whole.
+     * @param {Input[]} given
+     */
+    async add(given) {
+      const inputs = await Promise.all(given.map((input) => this.recognised(input)));
+      if (inputs.length > 0) takeIn(inputs);
+    },
+
+    /** Puts a sphering matrix beside an unmixing matrix. @param {Input} input */
+    addSphering(input) {
+      const before = store.read();
+      const sphering = /** @type {Input} */ ({ ...input, role: "sphering" });
+      const { inputs, replaced } = placedInputs(before.inputs, [sphering]);
+      exchange(inputs, replaced);
+      const file = namedFiles(inputs).find((one) => one.input === sphering);
+      const path = ["files", file?.name ?? "", "role"];
+      store.write({ settings: settingsWith(store.read().settings, path, "sphering") });
+      ask(before);
+    },
+
+    /**
+     * One or both boxes at once; null empties one. An invented map gives way as a whole.
      * @param {Partial<Record<InputKind, Input | null>>} inputs
      */
     put(inputs) {
-      const { inputs: held, settings, example } = store.read();
-      const before = example === null ? held : { electrodes: null, maps: null };
-      const other = KINDS.filter((kind) => kind in inputs && isOtherTable(held[kind], inputs[kind] ?? null));
-      const kept = settingsForOther(settings, example === null ? other : KINDS);
-      store.write({
-        inputs: { ...before, ...inputs },
-        settings: example === null ? kept : { ...kept, mapUnit: FIRST_SETTINGS.mapUnit },
-        changed: [],
-        example: null,
-        setAside: null,
-      });
+      const { inputs: held, example } = store.read();
+      exchange({ ...(example === null ? held : NO_INPUTS), ...inputs });
+      ask();
+    },
+
+    /** Takes a file away that stands beside the boxes. @param {Input} input */
+    remove(input) {
+      const { inputs } = store.read();
+      exchange({ ...inputs, others: inputs.others.filter((one) => one !== input) });
       ask();
     },
 
@@ -214,26 +354,24 @@ export function makeSession() {
       const { inputs, settings, example } = store.read();
       if (example === null || input === null) return this.put({ [kind]: input });
       const same = inputs[kind] !== null && firstLine(inputs[kind]) === firstLine(input);
-      store.write({
-        inputs: { ...inputs, [kind]: input },
-        settings: same ? settings : settingsForOther(settings, [kind]),
-        changed: [],
-        example: { ...example, edited: true },
-      });
+      const next = { ...inputs, [kind]: input };
+      const kept = same ? settings : settingsForOther(settings, [kind]);
+      step({ inputs: next, settings: kept, example: { ...example, edited: true } }, ["input"]);
       ask();
     },
 
     /** Shows an invented map; what was put in before can be taken back. @param {Example} example */
     show(example) {
       const { inputs, settings, example: before, setAside } = store.read();
-      const own = before === null && KINDS.some((kind) => inputs[kind] !== null);
-      store.write({
-        inputs: { electrodes: example.electrodes, maps: example.maps },
-        settings: { ...settingsForOther(settings, KINDS), mapUnit: example.unit ?? FIRST_SETTINGS.mapUnit },
-        changed: [],
-        example: { name: example.name, title: example.title, edited: false },
-        setAside: own ? { inputs, settings } : setAside,
-      });
+      step(
+        {
+          inputs: { ...NO_INPUTS, electrodes: example.electrodes, maps: example.maps },
+          settings: { ...settingsForOther(settings, KINDS), files: undefined, mapUnit: example.unit ?? FIRST_SETTINGS.mapUnit },
+          example: { name: example.name, title: example.title, edited: false },
+          setAside: before === null && !isEmpty(inputs) ? { inputs, settings } : setAside,
+        },
+        ["input"],
+      );
       ask();
     },
 
@@ -241,13 +379,48 @@ export function makeSession() {
     takeBack() {
       const { setAside } = store.read();
       if (setAside === null) return;
-      store.write({ ...setAside, changed: [], example: null, setAside: null });
+      step({ ...setAside, example: null, setAside: null }, ["input"]);
       ask();
     },
 
     /** @param {Partial<PageSettings>} settings */
     set(settings) {
-      store.write({ settings: { ...store.read().settings, ...settings }, changed: Object.keys(settings) });
+      const changed = Object.keys(settings);
+      step({ settings: { ...store.read().settings, ...settings }, changed }, changed);
+      ask();
+    },
+
+    /** A setting by its place; undefined leaves it to the engine. @param {string[]} path @param {unknown} value */
+    setAt(path, value) {
+      const { settings } = store.read();
+      step({ settings: settingsWith(settings, path, value), changed: [path[0]] }, [path[0]]);
+      if (isRole(path)) placeAnew(path[1], /** @type {FileRole} */ (value));
+      ask();
+    },
+
+    /**
+     * A setting that may make sense of files: of those that were refused, which are then tried again, or else of those
+     * that are there.
+     * @param {string[]} path
+     * @param {unknown} value
+     */
+    tryAt(path, value) {
+      const before = store.read();
+      const { refused } = before;
+      if (refused === null) return this.setAt(path, value);
+      if (isRole(path)) return addAs(path, /** @type {FileRole} */ (value), refused);
+      const settings = settingsWith(refused.settings, path, value);
+      step({ inputs: refused.inputs, settings, example: null, setAside: null, changed: [path[0]] }, [path[0]]);
+      ask(before);
+    },
+
+    /** Back by one change. */
+    undo() {
+      const { past } = store.read();
+      const last = past.at(-1);
+      if (last === undefined) return;
+      const { what, ...before } = last;
+      store.write({ ...before, past: past.slice(0, -1), changed: [], said: null, refused: null });
       ask();
     },
 
@@ -274,7 +447,7 @@ export function makeSession() {
       const { answer } = store.read();
       if (answer === null) return;
       const { inputs, settings, example } = answer;
-      store.write({ inputs, settings, example, changed: [] });
+      step({ inputs, settings, example }, ["input"]);
       ask();
     },
 
@@ -328,7 +501,7 @@ export function makeSession() {
 
     /** Puts the failure away; the previous answer stays. */
     dismiss() {
-      store.write({ phase: restingPhase(), failure: null });
+      store.write({ phase: restingPhase(), failure: null, refused: null });
     },
   };
 }

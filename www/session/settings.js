@@ -9,11 +9,18 @@ export const FIRST_SETTINGS = {
   activationSd: [],
 };
 
-/** Settings as the engine takes them: what has its default is left out. @param {PageSettings} settings */
-export function sentSettings(settings) {
+/**
+ * Settings as the engine takes them: what has its default is left out.
+ * @param {PageSettings} settings
+ * @param {Record<string, object>} told what is said about files without being a setting of the user's
+ */
+export function sentSettings(settings, told) {
   const { exclude, flip, polarity, activationSd, ...sent } = settings;
   /** @type {EngineSettings} */
   const request = sent;
+  const files = { ...settings.files };
+  for (const [name, wishes] of Object.entries(told)) files[name] = { ...wishes, ...files[name] };
+  if (Object.keys(files).length > 0) request.files = files;
   if (exclude.length > 0) request.exclude = exclude;
   if (flip.length > 0) request.flip = flip;
   if (polarity !== "arbitrary") request.polarity = polarity;
@@ -39,8 +46,19 @@ export function isOtherTable(before, now) {
 
 /** Settings that belong to one table and say nothing about another. @type {Record<InputKind, (keyof PageSettings)[]>} */
 const BOUND = {
-  maps: ["exclude", "interpolated", "flip", "activationSd", "laplacian"],
-  electrodes: ["exclude", "interpolated", "axes", "mirror", "unusualHead", "head"],
+  maps: [
+    "exclude",
+    "interpolated",
+    "flip",
+    "activationSd",
+    "laplacian",
+    "orientation",
+    "mapsAre",
+    "columnsAre",
+    "times",
+    "baseline",
+  ],
+  electrodes: ["exclude", "interpolated", "axes", "mirror", "unusualHead", "head", "units", "columns", "angles"],
 };
 
 /**
@@ -57,6 +75,37 @@ export function settingsForOther(settings, kinds) {
   const shells = settings.head?.shells;
   const head = bound.includes("head") && shells !== undefined ? { head: { shells } } : {};
   return { ...FIRST_SETTINGS, ...kept, ...head };
+}
+
+/** Settings of files that are there. @param {PageSettings} settings @param {string[]} names @returns {PageSettings} */
+export function settingsOfFiles({ files, ...settings }, names) {
+  const kept = Object.entries(files ?? {}).filter(([name]) =>
+    names.some((known) => name === known || name.startsWith(`${known}/`)),
+  );
+  return kept.length === 0 ? settings : { ...settings, files: Object.fromEntries(kept) };
+}
+
+/** Names of the settings in which two differ. @param {PageSettings} before @param {PageSettings} now */
+export function differingSettings(before, now) {
+  /** @param {PageSettings} settings */
+  const parts = (settings) => /** @type {Record<string, unknown>} */ ({ ...settings });
+  return Object.keys({ ...before, ...now }).filter(
+    (key) => JSON.stringify(parts(before)[key]) !== JSON.stringify(parts(now)[key]),
+  );
+}
+
+/**
+ * A copy with another value at a place; undefined takes it out, and what is empty then too.
+ * @param {any} settings
+ * @param {string[]} path
+ * @param {unknown} value
+ * @returns {any}
+ */
+export function settingsWith(settings, [key, ...rest], value) {
+  const { [key]: held, ...others } = settings ?? {};
+  const next = rest.length === 0 ? value : settingsWith(held, rest, value);
+  const empty = next === undefined || (rest.length > 0 && Object.keys(next).length === 0);
+  return empty ? others : { ...settings, [key]: next };
 }
 
 /** @param {number[]} flip @param {number} index @returns {number[]} */

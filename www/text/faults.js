@@ -30,10 +30,6 @@ const PAGE_FAULTS = {
     message: "That file is larger than 64 MiB, the most that is read.",
     hint: "Split the table, or leave out columns that are not needed.",
   },
-  "inputs-same-kind": {
-    message: "Both files read like the same kind of table.",
-    hint: "Drop one map table and one electrode table, or pick each by its own button.",
-  },
   "page-error": {
     message: "The page stopped on an error of its own.",
     hint: "Reload it and try again. If it happens again, please report it with the details below.",

@@ -3,9 +3,13 @@
 const MINUS = "\u2212";
 export const NO_BREAK = "\u00a0";
 
-/** For the eye: true minus signs and apostrophes, no line break between a number and its unit. @param {string} text */
+/**
+ * For the eye: true minus signs and apostrophes, no line break between a number and its unit, and nothing that would
+ * turn the writing round.
+ * @param {string} text
+ */
 export function typeset(text) {
-  return text
+  return harmless(text)
     .replace(/(^|[\s(]|\de)-(?=\d)/g, `$1${MINUS}`)
     .replace(/(?<=\p{Ll})'(?=s\b)|(?<=s)'(?=\s)/gu, "\u2019")
     .replace(/(\d) : (?=\d)/g, `$1${NO_BREAK}:${NO_BREAK}`)
@@ -22,6 +26,12 @@ export function percentText(fraction) {
 /** A name from outside, without what would turn the writing round or cannot be seen. @param {string} name */
 export function harmless(name) {
   return name.replace(/[\u0000-\u001f\u007f-\u009f\u200e\u200f\u202a-\u202e\u2066-\u2069]/g, "\ufffd");
+}
+
+/** A harmless name, of which the middle is left out where it is long. @param {string} name */
+export function shortName(name) {
+  const letters = [...harmless(name)];
+  return letters.length <= 48 ? letters.join("") : `${letters.slice(0, 30).join("")}…${letters.slice(-14).join("")}`;
 }
 
 /** @param {number} factor */

@@ -1,6 +1,6 @@
 /** Every sentence of the page, by code. */
 
-import { NO_BREAK } from "./figures.js";
+import { NO_BREAK, shortName } from "./figures.js";
 
 /** @type {Record<string, string>} */
 const WORDS = {
@@ -39,12 +39,19 @@ const WORDS = {
   "slot.standard": "standard positions",
   "slot.pasted": "pasted",
   "slot.pasted-electrodes": "pasted electrodes",
-  "slot.large": "This file is too long to show here.",
+  "slot.unshown": "Too long to show here, or no text.",
   "slot.maps-misplaced": "This reads like an electrode table.",
   "slot.electrodes-misplaced": "This reads like a map.",
   "slot.maps-move": "Use as electrodes",
   "slot.electrodes-move": "Use as map",
-  drop: "Drop a map, an electrode table, or both",
+  drop: "Drop maps, electrodes and what belongs to them, in any order",
+  others: "Further files",
+  "others.hint": "Any number of files in any order, told apart by what is in them: maps, electrodes, coordinate system, channels, labels, sphering matrix.",
+  "pick.several": "Pick files",
+  remove: "Remove",
+  undo: "Undo",
+  undone: "Undone",
+  automatic: "automatic",
 
   "state.loading": "Starting the engine",
   "state.ready": "Ready for a map",
@@ -164,7 +171,41 @@ const WORDS = {
 
   glossary: "Words on this sheet",
 
-  notes: "What was assumed",
+  understood: "What was understood",
+  "understood.head": "Electrodes on the head",
+  "understood.mirror": "Exchange left and right of the positions",
+  "understood.unusualHead": "Infant, skull defect or craniotomy",
+  "understood.unusual-caution": "Then the standard shells do not hold: positions, depths and strengths may be far off.",
+  "understood.interpolated": "Interpolated channels, divided by commas: no data, and not counted",
+  "understood.laplacian": "Are the maps surface Laplacians (current densities)?",
+  "understood.sphering": "Without its sphering matrix, where that is kept apart, an unmixing matrix gives wrong maps.",
+  "understood.times": "Times of the maps, in place of those found",
+  "understood.start": "start",
+  "understood.step": "step",
+  "understood.baseline": "Baseline, whose mean is subtracted",
+  "understood.from": "from",
+  "understood.to": "to",
+  "from.setting": "your setting",
+  "from.found": "found",
+  "from.declared": "declared",
+  "from.assumed": "assumed",
+  "set.role": "What it is",
+  "set.encoding": "Characters",
+  "set.delimiter": "Fields are divided by",
+  "set.decimal": "Decimals",
+  "set.label": "Column of labels",
+  "set.columns.label": "Electrodes: column of labels",
+  "set.columns.x": "Electrodes: column of x",
+  "set.columns.y": "Electrodes: column of y",
+  "set.columns.z": "Electrodes: column of z",
+  "set.angles.polar": "Polar angle",
+  "set.angles.unit": "Angles are in",
+  "set.orientation": "The table of maps has",
+  "set.mapsAre": "The table holds",
+  "set.units": "Positions are in",
+  "set.laplacian": "The maps are surface Laplacians",
+
+  notes: "What was assumed and noticed",
   "notes.none": "Nothing beyond the standard head.",
   "note.warning": "Note well",
 
@@ -173,6 +214,7 @@ const WORDS = {
     "where a person’s care is concerned, licensed practice and local rules decide.",
   ].join(" "),
 
+  "failure.help": "This may help",
   "failure.details": "Details to copy",
   "failure.copy": "Copy details",
   "failure.restore": "Back to the settings of the answer",
@@ -206,16 +248,17 @@ export function keptText(subject) {
 
 /** Which map of which inputs. @param {Answer} answer */
 export function subjectText({ names, maps, chosen, example }) {
-  const map = names.maps || word("slot.pasted");
+  const map = shortName(names.maps ?? "") || word("slot.pasted");
   const electrodes =
-    names.electrodes === null ? word("slot.standard") : names.electrodes || word("slot.pasted-electrodes");
+    names.electrodes === null ? word("slot.standard") : shortName(names.electrodes) || word("slot.pasted-electrodes");
   const invented = example === null ? "" : `invented example “${example.title}”${example.edited ? ", edited" : ""}`;
-  return [maps[chosen]?.name, map, electrodes, invented].filter((part) => part).join(" · ");
+  return [shortName(maps[chosen]?.name ?? ""), map, electrodes, invented].filter((part) => part).join(" · ");
 }
 
-/** @param {Record<InputKind, Input | null>} inputs that an invented map has replaced */
-export function setAsideText({ maps, electrodes }) {
-  const names = [maps, electrodes].filter((input) => input !== null).map((input) => input.name || word("slot.pasted"));
+/** @param {Inputs} inputs that an invented map has replaced */
+export function setAsideText({ maps, electrodes, others }) {
+  const inputs = [maps, electrodes, ...others].filter((input) => input !== null);
+  const names = inputs.map((input) => shortName(input.name) || word("slot.pasted"));
   return `Your own data (${names.join(", ")}) are set aside while an invented map is shown.`;
 }
 
@@ -255,7 +298,7 @@ export function electrodeParts({ used, measured, projected, residual, share }, u
 
 /** @param {SheetElectrode} electrode @param {string} unit */
 export function electrodeText(electrode, unit) {
-  return `${electrode.label}: ${electrodeParts(electrode, unit).join(", ")}`;
+  return `${shortName(electrode.label)}: ${electrodeParts(electrode, unit).join(", ")}`;
 }
 
 /** @param {number} out @param {number} all */
@@ -266,7 +309,128 @@ export function leftOutText(out, all) {
 /** What became of an electrode. @param {SheetElectrode} electrode @param {SheetElectrode[]} electrodes */
 export function usedText({ label, used }, electrodes) {
   const out = electrodes.filter((electrode) => !electrode.used).length;
-  return `${label} ${used ? "taken back" : "left out"}. ${leftOutText(out, electrodes.length)}.`;
+  return `${shortName(label)} ${used ? "taken back" : "left out"}. ${leftOutText(out, electrodes.length)}.`;
+}
+
+/** Settings as they are spoken of. @type {Record<string, string>} */
+const SETTING_NAMES = {
+  input: "input",
+  mapUnit: "unit of the maps",
+  exclude: "electrodes left out",
+  interpolated: "interpolated channels",
+  axes: "axes",
+  mirror: "left and right",
+  unusualHead: "unusual head",
+  laplacian: "surface Laplacians",
+  head: "head",
+  flip: "turned signs",
+  polarity: "polarity",
+  activationSd: "activations",
+  files: "how files are read",
+  units: "unit of the positions",
+  orientation: "orientation of the table",
+  mapsAre: "what the table holds",
+  columns: "columns",
+  angles: "angles",
+  columnsAre: "what the maps are",
+  times: "times",
+  baseline: "baseline",
+};
+
+/** @param {string[]} names of settings */
+export function settingsText(names) {
+  return names.map((name) => SETTING_NAMES[name] ?? name).join(", ");
+}
+
+/** What went with the last change. @param {{ replaced: string[], dropped: string[] }} said */
+export function saidText({ replaced, dropped }) {
+  const files = replaced.map((name) => shortName(name) || word("slot.pasted"));
+  const parts = [];
+  if (files.length > 0) parts.push(`Replaced: ${files.join(", ")}.`);
+  if (dropped.length > 0) parts.push(`Settings of the earlier table were dropped: ${settingsText(dropped)}.`);
+  return parts.join(" ");
+}
+
+/** @type {Record<FileRole, string>} */
+const ROLE_NAMES = {
+  electrodes: "electrodes",
+  maps: "maps",
+  "electrodes-and-maps": "electrodes and maps",
+  labels: "list of labels",
+  channels: "table of channels",
+  coordinates: "description of coordinates",
+  sphering: "sphering matrix",
+  times: "list of times",
+  unused: "not needed",
+};
+
+/** @param {FileRole} role */
+export function roleText(role) {
+  return ROLE_NAMES[role];
+}
+
+/** @type {Record<string, string>} */
+const FORMATS = { "delimited-text": "Text table", json: "JSON", npy: "NumPy array", mat: "MATLAB file", zip: "Archive" };
+
+/** @type {Record<string, string>} */
+const ENCODINGS = {
+  "utf-8": "UTF-8",
+  "latin-1": "Latin-1",
+  "utf-16le": "UTF-16, low byte first",
+  "utf-16be": "UTF-16, high byte first",
+};
+
+/** @param {UnderstoodFile} facts */
+export function factsText({ format, encoding, rows, columns, header }) {
+  /** @param {number} count @param {string} noun */
+  const counted = (count, noun) => `${count.toLocaleString("en-GB")}${NO_BREAK}${noun}${count === 1 ? "" : "s"}`;
+  const parts = [FORMATS[format] ?? format];
+  if (encoding !== null) parts.push(ENCODINGS[encoding] ?? encoding);
+  parts.push(counted(rows, "row"), counted(columns, "column"));
+  if (header) parts.push("with a header");
+  return `${parts.join(", ")}.`;
+}
+
+/** Which columns mean what. @param {UnderstoodFile} facts */
+export function columnText({ used, passed_over: passed }) {
+  /** @param {UnderstoodFile["used"][number]} column */
+  const named = ({ column, name }) => (name === "" ? String(column) : `${column} “${shortName(name)}”`);
+  const values = used.filter((column) => column.as === "value");
+  const parts = used.filter((column) => column.as !== "value").map((column) => `${named(column)} ${column.as}`);
+  if (values.length > 0) parts.push(`${values.map(named).join(" to ")} values`);
+  const texts = [];
+  if (parts.length > 0) texts.push(`Columns used: ${parts.join(", ")}.`);
+  if (passed.length > 0) texts.push(`Passed over: ${listText(passed)}.`);
+  return texts.join(" ");
+}
+
+/** The first of many words, and how many more there are. @param {string[]} words */
+function listText(words) {
+  const most = 12;
+  const more = words.length > most ? ` and ${words.length - most} more` : "";
+  return `${words.slice(0, most).map(shortName).join(", ")}${more}`;
+}
+
+/** What became of the labels, a line each. @param {UnderstoodLabels} labels */
+export function labelLines(labels) {
+  const renamed = labels.renamed.map(({ from, to }) => `${shortName(from)} as ${shortName(to)}`);
+  /** @type {[string, string[]][]} */
+  const lists = [
+    ["Read as other names", renamed],
+    ["Without a value", labels.without_value],
+    ["Without a position", labels.without_position],
+    ["Not on the scalp", labels.not_scalp],
+    ["Interpolated", labels.interpolated],
+    ["Reference", labels.reference === null ? [] : [labels.reference]],
+  ];
+  const lines = lists.filter(([, words]) => words.length > 0).map(([title, words]) => `${title}: ${listText(words)}.`);
+  return [`With a position and a value: ${labels.matched}.`, ...lines];
+}
+
+/** @param {"above" | "left"} view @param {Record<string, string>} ends labels of the outermost electrodes */
+export function previewText(view, { front, left, right, back, top }) {
+  const ends = view === "above" ? `left ${left}, right ${right}` : `top ${top}`;
+  return `Electrodes ${word(`view.${view}`)}: front ${front}, back ${back}, ${ends}`;
 }
 
 /** What lies in each quarter of a turn: straight ahead, and to either side of it. */

@@ -3,7 +3,7 @@
  * is listed in blocks (browsers stall over lists of many thousand entries) and a map can be asked for by its number.
  */
 
-import { percentText } from "../text/figures.js";
+import { percentText, shortName } from "../text/figures.js";
 import { furtherText, word } from "../text/words.js";
 import { make, need } from "./element.js";
 
@@ -13,7 +13,7 @@ const BLOCK = 500;
 
 /** @param {MapSummary} map */
 function optionText(map) {
-  return `${map.name} · ${"rv" in map ? `RV ${percentText(map.rv)}` : word("choice.unfitted")}`;
+  return `${shortName(map.name)} · ${"rv" in map ? `RV ${percentText(map.rv)}` : word("choice.unfitted")}`;
 }
 
 /** @param {number} index @param {string} text */

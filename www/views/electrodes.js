@@ -3,7 +3,7 @@
  * leave it out. The values of the one pointed at stand beside the maps too.
  */
 
-import { typeset } from "../text/figures.js";
+import { shortName, typeset } from "../text/figures.js";
 import { electrodeParts, leftOutText, symbolOf, word } from "../text/words.js";
 import { make, need } from "./element.js";
 
@@ -104,7 +104,7 @@ export function showElectrodes(session) {
     const box = document.createElement("input");
     box.type = "checkbox";
     const name = make("label", "");
-    name.append(box, make("span", sheet.label));
+    name.append(box, make("span", shortName(sheet.label)));
     const head = make("th", "", { scope: "row" });
     head.append(name);
     const cells = ["measured", "projected", "residual", "share"].map((part) => make("td", "", { "data-part": part }));
@@ -149,7 +149,7 @@ export function showElectrodes(session) {
       return;
     }
     readout.replaceChildren(
-      make("strong", electrode.label),
+      make("strong", shortName(electrode.label)),
       ...electrodeParts(electrode, sheet.scale.unit).map((part) => make("span", typeset(part))),
     );
   }

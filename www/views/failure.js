@@ -1,21 +1,53 @@
 /** What went wrong: a sentence, a next step, and details to copy. */
 
 import { copyText } from "../export/out.js";
+import { helpFor } from "../session/help.js";
+import { namedFiles } from "../session/inputs.js";
 import { detailsText } from "../text/faults.js";
+import { shortName, typeset } from "../text/figures.js";
 import { keptText, subjectText, word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
-import { need } from "./element.js";
+import { make, need } from "./element.js";
+import { choiceRow, enteredColumn, fieldRow } from "./setting.js";
 
 /** @import { Session } from "../session/session.js" */
+/** @import { Apply } from "./setting.js" */
 
 /** @param {SessionState} state */
 function comesFromHead({ answer, changed }) {
   return answer !== null && changed.includes("head");
 }
 
+/** Settings that may make sense of what was not understood. @param {Session} session @param {Fault} failure */
+function helpRows(session, failure) {
+  const { inputs, settings, refused, offers } = session.read();
+  const names = namedFiles(refused?.inputs ?? inputs).map(({ name }) => name);
+  return helpFor(failure, names).map(({ setting, path, file }) => {
+    const name = word(`set.${setting}`);
+    const text = file === null ? name : `${name}: ${shortName(file)}`;
+    /** @type {any} */
+    const held = path.reduce((part, key) => /** @type {any} */ (part)?.[key], /** @type {any} */ (refused?.settings ?? settings));
+    const offer = offers.find((one) => one.setting === setting);
+    /** @type {Apply} */
+    const apply = (place, chosen) => session.tryAt(place, chosen);
+    const value = held === undefined ? {} : { value: held, from: "setting" };
+    const row =
+      offer === undefined
+        ? fieldRow(apply, path, text, String(held ?? ""), enteredColumn)
+        : choiceRow(apply, { path, options: offer.options, ...value }, text);
+    // The same setting may stand among what was understood for the answer that is still shown.
+    for (const part of row.querySelectorAll("[id], [for]")) {
+      for (const name of ["id", "for"]) {
+        if (part.hasAttribute(name)) part.setAttribute(name, `help-${part.getAttribute(name)}`);
+      }
+    }
+    return row;
+  });
+}
+
 /** Whether someone types, or works where the failure is said too. @param {Element | null} element */
 function underHands(element) {
-  return element !== null && element.matches("textarea, #electrode-list *, .disc, .head-edit *");
+  return element !== null && element.matches("textarea, #electrode-list *, .disc, .head-edit *, .card *");
 }
 
 /** @param {Session} session */
@@ -46,7 +78,13 @@ export function showFailure(session) {
       const others = answer !== null && state.inputs !== answer.inputs;
       restore.hidden = answer === null || (!others && state.settings === answer.settings);
       restore.textContent = word(others ? "failure.restore-input" : "failure.restore");
-      need("failure-message", HTMLElement).textContent = failure?.message ?? "";
+      const rows = failure === null ? [] : helpRows(session, failure);
+      const help = need("failure-help", HTMLElement);
+      const focused = help.contains(document.activeElement) ? document.activeElement?.id : undefined;
+      help.hidden = rows.length === 0;
+      need("failure-rows", HTMLElement).replaceChildren(...rows);
+      if (focused) document.getElementById(focused)?.focus({ preventScroll: true });
+      need("failure-message", HTMLElement).textContent = typeset(failure?.message ?? "");
       need("failure-hint", HTMLElement).textContent = failure?.hint ?? "";
       const kept = need("failure-kept", HTMLElement);
       kept.hidden = state.answer === null;

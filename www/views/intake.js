@@ -1,8 +1,9 @@
 /** The input column: two tables and the unit of the map. It folds to a few lines when it has done its work. */
 
 import { inputOfFile, shownText } from "../intake/files.js";
-import { word } from "../text/words.js";
-import { need } from "./element.js";
+import { shortName } from "../text/figures.js";
+import { roleText, word } from "../text/words.js";
+import { make, need } from "./element.js";
 
 /** @import { Session } from "../session/session.js" */
 
@@ -15,7 +16,7 @@ const OTHER_KIND = { maps: "electrodes", electrodes: "maps" };
 /** @param {Input | null} input @param {InputKind} kind */
 function inputName(input, kind) {
   if (input === null) return word(kind === "maps" ? "slot.none" : "slot.standard");
-  return input.name || word("slot.pasted");
+  return shortName(input.name) || word("slot.pasted");
 }
 
 /** @param {Session} session @param {InputKind} kind */
@@ -28,20 +29,29 @@ function showSlot(session, kind) {
   let own = null;
   let timer = 0;
 
+  /** What was put here last, by number: an earlier one that is recognised later gives way. */
+  let latest = 0;
+
   /**
    * Takes what was put here by hand, and says so if it reads like the other kind.
    * @param {Input | null} input
-   * @param {() => void} put
+   * @param {(input: Input | null) => void} put
    */
   const take = async (input, put) => {
-    put();
-    const read = input === null ? kind : await session.kindOf(input.content);
-    if (session.read().inputs[kind] === input) misplaced.hidden = read === kind;
+    const number = ++latest;
+    const known = input === null ? null : await session.recognised(input);
+    if (number !== latest) return;
+    put(known);
+    const other = kind === "maps" ? ["electrodes", "labels"] : ["maps", "electrodes-and-maps"];
+    misplaced.hidden = known?.role === undefined || !other.includes(known.role);
   };
   const takeField = () => {
     clearTimeout(timer);
-    own = field.value.trim() === "" ? null : { name: "", content: field.value };
-    take(own, () => session.edit(kind, own)).catch(session.fail);
+    const typed = field.value.trim() === "" ? null : { name: "", content: field.value };
+    take(typed, (input) => {
+      own = input;
+      session.edit(kind, input);
+    }).catch(session.fail);
   };
   field.addEventListener("input", () => {
     clearTimeout(timer);
@@ -58,12 +68,13 @@ function showSlot(session, kind) {
     file.value = "";
     try {
       const input = await inputOfFile(picked);
-      await take(input, () => session.put({ [kind]: input }));
+      await take(input, (known) => session.put({ [kind]: known }));
     } catch (error) {
       session.fail(error);
     }
   });
   clear.addEventListener("click", () => {
+    latest++;
     session.put({ [kind]: null });
     field.focus();
   });
@@ -78,12 +89,50 @@ function showSlot(session, kind) {
       if (input === null || input !== own) {
         const text = input === null ? "" : shownText(input);
         if (text === null || field.value.trim() !== text.trim()) field.value = text ?? "";
-        field.placeholder = text === null ? word("slot.large") : "";
+        field.placeholder = text === null ? word("slot.unshown") : "";
       }
       clear.hidden = input === null;
-      need(`${kind}-name`, HTMLElement).textContent = input?.name ?? "";
+      need(`${kind}-name`, HTMLElement).textContent = shortName(input?.name ?? "");
       need(`${kind}-loaded`, HTMLElement).textContent = inputName(input, kind);
       misplaced.hidden = true;
+    },
+  );
+}
+
+/** Files that stand beside the boxes, and a button that takes any number of any kind. @param {Session} session */
+function showOthers(session) {
+  const list = need("others", HTMLUListElement);
+  const files = need("any-files", HTMLInputElement);
+  files.addEventListener("change", async () => {
+    const picked = [...(files.files ?? [])];
+    files.value = "";
+    try {
+      await session.add(await Promise.all(picked.map(inputOfFile)));
+    } catch (error) {
+      session.fail(error);
+    }
+  });
+  session.watch(
+    (state) => state.inputs.others,
+    (others) => {
+      list.hidden = others.length === 0;
+      list.replaceChildren(
+        ...others.map((input) => {
+          const element = make("li", "");
+          const name = shortName(input.name || word("slot.pasted"));
+          const remove = make("button", word("remove"), { type: "button", class: "quiet" });
+          remove.setAttribute("aria-label", `${word("remove")}: ${name}`);
+          remove.addEventListener("click", () => {
+            session.remove(input);
+            files.focus();
+          });
+          const role = make("span", roleText(input.role ?? "unused"), { class: "small" });
+          element.append(make("span", name, { class: "file-name" }), " · ", role, remove);
+          return element;
+        }),
+      );
+      need("others-loaded", HTMLElement).textContent = others.map(({ name }) => shortName(name)).join(", ");
+      for (const part of document.querySelectorAll("#loaded .others")) part.toggleAttribute("hidden", others.length === 0);
     },
   );
 }
@@ -143,9 +192,9 @@ function showFolding(session) {
   );
   session.watch(
     (state) => state.failure,
-    (failure, { changed }) => {
-      // What comes from a setting is mended where the setting is.
-      if (failure !== null && changed.length === 0) setFolded(false);
+    (failure, { changed, refused }) => {
+      // What comes from a setting is mended where the setting is; after files were refused, the input is that of before.
+      if (failure !== null && changed.length === 0 && refused === null) setFolded(false);
     },
   );
 }
@@ -154,6 +203,7 @@ function showFolding(session) {
 export function showIntake(session) {
   showSlot(session, "maps");
   showSlot(session, "electrodes");
+  showOthers(session);
   showUnit(session);
   showFolding(session);
 }

@@ -17,7 +17,7 @@ use crate::report::{
     Program, Renamed, Report, SearchReport, Settings, Sheet, Site, UnderstoodReport,
 };
 use crate::scene::{Picture, Spline};
-use crate::understand::{ColumnsAre, Kind, kind_of};
+use crate::understand::{ColumnsAre, Kind, Role, kind_of, role_of_files};
 use core::ops::Range;
 use std::sync::{Arc, OnceLock};
 use tables::Tables;
@@ -44,6 +44,16 @@ pub struct Request<'a> {
 pub fn kind(bytes: &[u8]) -> Kind {
     let files = read("", bytes, |_| Reading::default()).unwrap_or_default();
     kind_of(files.iter().map(|(_, content)| content))
+}
+
+/// What a file is by its content.
+///
+/// # Errors
+/// Any of [`crate::read::read`], naming the file.
+pub fn role(name: &str, bytes: &[u8]) -> Result<Role, Error> {
+    let files = read(name, bytes, |_| Reading::default());
+    let files = files.map_err(|error| error.within("file", Some(name)))?;
+    Ok(role_of_files(files.iter().map(|(_, content)| content)))
 }
 
 /// Reads, places, fits every map and reports.

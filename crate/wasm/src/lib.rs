@@ -40,6 +40,19 @@ pub fn kind_of(content: JsValue) -> Result<JsValue, JsValue> {
     plain(&inward_core::kind(&bytes))
 }
 
+/// What a file is by its content: one of the roles that `settings.files` takes.
+#[wasm_bindgen(js_name = roleOf)]
+pub fn role_of(name: &str, content: JsValue) -> Result<JsValue, JsValue> {
+    let bytes = wire::bytes(&content, "content")?.unwrap_or_default();
+    plain(&inward_core::role(name, &bytes).map_err(|error| thrown(&error))?)
+}
+
+/// Every choice among fixed options with its options in words.
+#[wasm_bindgen]
+pub fn choices() -> Result<JsValue, JsValue> {
+    plain(&inward_core::report::offered())
+}
+
 /// The report of `{ electrodes?, maps, settings? }` or `{ files: [{ name, content }], settings? }`.
 #[wasm_bindgen]
 pub fn analyse(request: JsValue) -> Result<JsValue, JsValue> {

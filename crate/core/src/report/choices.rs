@@ -1,8 +1,11 @@
 //! Words for choices: a sentence for each, and a name for each option.
 
-use super::messages::axes_words;
+use super::messages::{axes_words, listed};
 use super::number::significant;
 use crate::finding::{Choice, Origin, Value};
+use crate::head::AxesName;
+use crate::read::{Delimiter, Encoding};
+use crate::understand::{AngleUnit, ColumnsAre, Decimal, MapsAre, Orientation, Polar, Role};
 use serde::Serialize;
 
 /// A choice in words, as reports and the page have it.
@@ -51,6 +54,43 @@ impl From<&Choice> for ChoiceReport {
     }
 }
 
+/// Every choice among fixed options, whether a file gave rise to it or not: what can be tried when files were not understood.
+pub fn offered() -> Vec<ChoiceOffer> {
+    let axes = AxesName::all().take(4).map(|name| name.to_string()).collect::<Vec<_>>();
+    let names = |names: &[&str]| names.iter().map(|name| Value::from(*name)).collect::<Vec<_>>();
+    let flags = vec![Value::Flag(false), Value::Flag(true)];
+    [
+        ("role", names(&Role::ALL.map(Role::name))),
+        ("encoding", names(&Encoding::ALL.map(Encoding::name))),
+        ("delimiter", names(&Delimiter::ALL.map(Delimiter::name))),
+        ("decimal", names(&[Decimal::Point, Decimal::Comma].map(Decimal::name))),
+        ("orientation", names(&Orientation::ALL.map(Orientation::name))),
+        ("mapsAre", names(&MapsAre::ALL.map(MapsAre::name))),
+        ("columnsAre", names(&ColumnsAre::ALL.map(ColumnsAre::name))),
+        ("units", names(&["m", "cm", "mm"])),
+        ("axes", axes.into_iter().map(Value::from).collect()),
+        ("mirror", flags.clone()),
+        ("laplacian", flags),
+        ("angles.polar", names(&[Polar::Inclination, Polar::Elevation].map(Polar::name))),
+        ("angles.unit", names(&[AngleUnit::Degrees, AngleUnit::Radians].map(AngleUnit::name))),
+    ]
+    .into_iter()
+    .map(|(setting, values)| {
+        let option = |value: Value| OptionReport { label: option_label(setting, &value, None), value };
+        ChoiceOffer { setting, options: values.into_iter().map(option).collect() }
+    })
+    .collect()
+}
+
+/// What a choice can be set to.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct ChoiceOffer {
+    /// Its name.
+    pub setting: &'static str,
+    /// What can be chosen.
+    pub options: Vec<OptionReport>,
+}
+
 /// What was chosen, and why.
 pub fn sentence(choice: &Choice) -> String {
     let own = choice.options.iter().find(|(value, _)| *value == choice.value).and_then(|(_, own)| own.as_deref());
@@ -92,7 +132,7 @@ pub fn sentence(choice: &Choice) -> String {
     };
     let labels = match (choice.value("by"), choice.value("labels")) {
         (Some(Value::Text(by)), Some(Value::List(labels))) if by == "labels" => {
-            format!(", as the labels tell: {}", labels.join(", "))
+            format!(", as the labels tell: {}", listed(labels))
         }
         (Some(Value::Text(by)), _) if by == "landmarks" => ", as the points at ears and nose tell".into(),
         _ => String::new(),

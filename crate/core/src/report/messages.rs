@@ -612,7 +612,7 @@ fn clipped(text: &str) -> String {
 }
 
 /// At most twelve words, and how many more there are.
-fn listed(words: &[String]) -> String {
+pub(super) fn listed(words: &[String]) -> String {
     const MOST: usize = 12;
     let shown = words.iter().take(MOST).map(|word| clipped(word)).collect::<Vec<_>>().join(", ");
     if words.len() > MOST { format!("{shown} and {} more", words.len() - MOST) } else { shown }

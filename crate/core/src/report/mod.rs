@@ -7,7 +7,7 @@ mod number;
 mod settings;
 mod sheet;
 
-pub use choices::{ChoiceReport, OptionReport};
+pub use choices::{ChoiceOffer, ChoiceReport, OptionReport, offered};
 pub use figure::{Figure, FigureDipole, FigureShell};
 pub use messages::{hint, is_warning, message};
 pub use settings::{Assessment, HeadSettings, Polarity, Settings};

@@ -12,7 +12,7 @@ mod sequence;
 mod unmixing;
 mod wishes;
 
-pub use role::{Kind, kind_of};
+pub use role::{Kind, kind_of, role_of_files};
 pub use sequence::Moments;
 pub use wishes::{
     AngleUnit, AngleWishes, Baseline, ColumnName, ColumnWishes, ColumnsAre, Decimal, FileWishes, MapsAre, Orientation,

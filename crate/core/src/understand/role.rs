@@ -2,7 +2,7 @@ use super::grid::{Grid, Header};
 use super::{Role, positions};
 use crate::head::{LengthUnit, Sphere, SphereFit, spread};
 use crate::math::Vec3;
-use crate::read::{Content, Record, is_label_name};
+use crate::read::{Body, Content, Record, is_label_name};
 
 /// Largest rms deviation from the fitted sphere in radii: measured heads stay below 0.08, also with electrodes 12 mm off.
 const ROUGH: f64 = 0.12;
@@ -124,6 +124,30 @@ pub enum Kind {
     Electrodes,
     /// Labels with values, and all that is neither.
     Maps,
+}
+
+/// What files that belong together are, taken as a whole.
+pub fn role_of_files<'a>(contents: impl IntoIterator<Item = &'a Content> + Clone) -> Role {
+    let grids = contents.clone().into_iter().flat_map(|content| Grid::of(0, &content.parts, None));
+    let records = contents.into_iter().flat_map(|content| &content.parts).filter_map(|part| match &part.body {
+        Body::Record(record) => Some(role_of_record(record)),
+        _ => None,
+    });
+    let roles: Vec<Role> = grids.map(|grid| role_of(&grid)).chain(records).collect();
+    let has = |role: Role| roles.contains(&role);
+    match (has(Role::Electrodes), has(Role::Maps)) {
+        (true, true) => Role::ElectrodesAndMaps,
+        _ => Role::ALL
+            .into_iter()
+            .filter(|role| has(*role))
+            .min_by_key(|role| match role {
+                Role::ElectrodesAndMaps => 0,
+                Role::Maps => 1,
+                Role::Electrodes => 2,
+                _ => 3,
+            })
+            .unwrap_or(Role::Unused),
+    }
 }
 
 /// Whether files hold electrodes and no maps.

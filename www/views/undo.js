@@ -1,0 +1,42 @@
+/** What the last change has moved aside, and the way back. */
+
+import { isTextField } from "../intake/drop.js";
+import { saidText, settingsText, word } from "../text/words.js";
+import { need } from "./element.js";
+
+/** @import { Session } from "../session/session.js" */
+
+/** @param {Session} session */
+export function showUndo(session) {
+  const line = need("undo-line", HTMLElement);
+  const button = need("undo", HTMLButtonElement);
+  const back = () => {
+    const { past } = session.read();
+    if (past.length === 0) return;
+    session.undo();
+    need("said", HTMLElement).textContent = `${word("undone")}: ${settingsText(past[past.length - 1].what)}.`;
+    if (past.length === 1) need("main", HTMLElement).focus({ preventScroll: true });
+  };
+  button.addEventListener("click", back);
+  document.addEventListener("keydown", (event) => {
+    const wanted = (event.ctrlKey || event.metaKey) && !event.shiftKey && !event.altKey && event.key === "z";
+    // A text field has an undo of its own.
+    if (!wanted || isTextField(event.target)) return;
+    event.preventDefault();
+    back();
+  });
+  session.watch(
+    (state) => state.past,
+    (past, { said }) => {
+      line.hidden = past.length === 0;
+      button.textContent = past.length === 0 ? word("undo") : `${word("undo")}: ${settingsText(past[past.length - 1].what)}`;
+      need("said", HTMLElement).textContent = said === null ? "" : saidText(said);
+    },
+  );
+  session.watch(
+    (state) => state.said,
+    (said) => {
+      need("said", HTMLElement).textContent = said === null ? "" : saidText(said);
+    },
+  );
+}
