@@ -89,6 +89,7 @@ fn binary_files_are_told_apart_in_any_order(page: &Page) {
     page.drop_bytes(&[("cap.mat", &sample("cap.mat"))]);
     page.until("the MATLAB file", |page| answered(page) && page.exists("[data-file='cap.mat']"));
     assert_eq!(page.download_report()["maps"].as_array().unwrap().len(), seen[0].as_array().unwrap().len());
+    assert!(!page.text("#subject").contains("standard positions"), "positions stand in the same file");
 }
 
 fn cards_tell_what_was_understood(page: &Page) {
@@ -103,6 +104,8 @@ fn cards_tell_what_was_understood(page: &Page) {
     for words in ["millimetres", "With a position and a value: 70"] {
         assert!(head.contains(words), "{words:?} in {head:?}");
     }
+    let whole = page.value("return [...document.querySelector('#set-mapsAre').options].map((option) => option.text)");
+    assert_eq!(whole[2], "an unmixing matrix, whose pseudo-inverse holds the maps", "words of ours are not shortened");
     let report = page.download_report();
     let shown = page.text("#cards");
     for choice in report["understood"]["choices"].as_array().unwrap() {

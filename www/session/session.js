@@ -204,7 +204,8 @@ export function makeSession() {
     try {
       const { preamble, count } = await client.ask({ kind: "open", key });
       if (pending !== key) return;
-      const names = { electrodes: inputs.electrodes?.name ?? null, maps: inputs.maps.name };
+      const beside = inputs.maps.role === "electrodes-and-maps" ? inputs.maps.name : null;
+      const names = { electrodes: inputs.electrodes?.name ?? beside, maps: inputs.maps.name };
       /** @type {Answer} */
       const draft = { key, names, inputs, example, settings, preamble, count, maps: [], fitted: 0, chosen: 0, sheet: null };
       // The same tables under other settings: the same map stays in view and is answered before the others.

@@ -37,6 +37,7 @@ const WORDS = {
   "unit.V": "V",
   "slot.none": "none yet",
   "slot.standard": "standard positions",
+  "slot.beside": "in the same file",
   "slot.pasted": "pasted",
   "slot.pasted-electrodes": "pasted electrodes",
   "slot.unshown": "Too long to show here, or no text.",
@@ -252,7 +253,8 @@ export function subjectText({ names, maps, chosen, example }) {
   const electrodes =
     names.electrodes === null ? word("slot.standard") : shortName(names.electrodes) || word("slot.pasted-electrodes");
   const invented = example === null ? "" : `invented example “${example.title}”${example.edited ? ", edited" : ""}`;
-  return [shortName(maps[chosen]?.name ?? ""), map, electrodes, invented].filter((part) => part).join(" · ");
+  const together = names.maps !== "" && names.electrodes === names.maps;
+  return [shortName(maps[chosen]?.name ?? ""), map, together ? "" : electrodes, invented].filter((part) => part).join(" · ");
 }
 
 /** @param {Inputs} inputs that an invented map has replaced */

@@ -93,8 +93,19 @@ function showSlot(session, kind) {
       }
       clear.hidden = input === null;
       need(`${kind}-name`, HTMLElement).textContent = shortName(input?.name ?? "");
-      need(`${kind}-loaded`, HTMLElement).textContent = inputName(input, kind);
       misplaced.hidden = true;
+    },
+  );
+}
+
+/** What is loaded, for the folded column. @param {Session} session */
+function showLoaded(session) {
+  session.watch(
+    (state) => state.inputs,
+    ({ maps, electrodes }) => {
+      const beside = electrodes === null && maps?.role === "electrodes-and-maps";
+      need("maps-loaded", HTMLElement).textContent = inputName(maps, "maps");
+      need("electrodes-loaded", HTMLElement).textContent = beside ? word("slot.beside") : inputName(electrodes, "electrodes");
     },
   );
 }
@@ -203,6 +214,7 @@ function showFolding(session) {
 export function showIntake(session) {
   showSlot(session, "maps");
   showSlot(session, "electrodes");
+  showLoaded(session);
   showOthers(session);
   showUnit(session);
   showFolding(session);

@@ -4,7 +4,7 @@
  */
 
 import { inputOfFile } from "../intake/files.js";
-import { shortName, typeset } from "../text/figures.js";
+import { harmless, shortName, typeset } from "../text/figures.js";
 import { columnText, factsText, labelLines, roleText, word } from "../text/words.js";
 import { make, need } from "./element.js";
 import { showPreview } from "./preview.js";
@@ -30,12 +30,12 @@ function rank({ setting }) {
 
 /** Pieces of the input in a sentence may be long. @param {string} text */
 function shown(text) {
-  return text.replace(/\S{49,}/gu, shortName);
+  return harmless(text).replace(/\S{49,}/gu, shortName);
 }
 
 /** @param {Choice} choice */
 function harmlessChoice({ options, ...choice }) {
-  return { ...choice, options: options.map(({ value, label }) => ({ value, label: shortName(label) })) };
+  return { ...choice, options: options.map(({ value, label }) => ({ value, label: shown(label) })) };
 }
 
 /** @param {string} title @param {string} role @returns {HTMLElement} */
