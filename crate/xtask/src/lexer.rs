@@ -56,22 +56,34 @@ pub fn tokens(script: &str) -> Result<Vec<Token<'_>>> {
     }
 }
 
-/// The script without comments and indentation. A gap between tokens stays a gap, and one with a line's end stays one: that
-/// may end a statement.
+/// The script without comments and without blanks that nothing hangs on. An end of a line stays where it may end a
+/// statement.
 pub fn terse(script: &str) -> Result<String> {
     let mut terse = String::with_capacity(script.len());
-    let mut end = 0;
+    let mut last: Option<Token> = None;
     for token in tokens(script)? {
-        let gap = &script[end..token.start];
-        if gap.contains('\n') {
+        let gap = &script[last.map_or(0, |last| last.end())..token.start];
+        let opens = last.is_none_or(|last| last.kind == Kind::Mark && "{([,;".contains(last.text));
+        if gap.contains('\n') && !opens && !token.text.starts_with('}') {
             terse.push('\n');
-        } else if !gap.is_empty() {
+        } else if !gap.is_empty() && last.is_some_and(|last| parts(&last, &token)) {
             terse.push(' ');
         }
         terse.push_str(token.text);
-        end = token.end();
+        last = Some(token);
     }
     Ok(terse)
+}
+
+/// Whether two tokens would become others without a blank between them.
+fn parts(last: &Token, next: &Token) -> bool {
+    let (end, start) = (last.text.chars().next_back(), next.text.chars().next());
+    let word = |character: Option<char>| character.is_some_and(|one| is_word(one) || one == '\\');
+    let digits = last.text.starts_with(|one: char| one.is_ascii_digit());
+    (word(end) && word(start))
+        || (digits && next.is("."))
+        || (end == start && last.kind == Kind::Mark && "+-/&|?*<>=!.".contains(last.text))
+        || (end == Some('/') || start == Some('/'))
 }
 
 struct Lexer<'a> {
@@ -253,7 +265,19 @@ mod tests {
     #[test]
     fn terse_scripts_keep_gaps_strings_and_ends_of_lines() {
         let script = "// first\nlet a = /* b */ 1 // c\n  let  d = `// ${ a /* e\n */ }\n  `;\n\n";
-        assert_eq!(terse(script).unwrap(), "\nlet a = 1\nlet d = `// ${ a\n}\n  `;");
+        assert_eq!(terse(script).unwrap(), "let a=1\nlet d=`// ${a}\n  `;");
+        for (script, short) in [
+            ("a + +b - -c", "a+ +b- -c"),
+            ("return /x/u .test (y)", "return /x/u.test(y)"),
+            ("if (a) {\n  b();\n}\nc\n(d)", "if(a){b();}\nc\n(d)"),
+            ("1 .toString()", "1 .toString()"),
+            ("a / b / c", "a / b / c"),
+            ("x = (a, b) => ({ ...a, b: `${ c } d` });", "x=(a,b)=>({...a,b:`${c} d`});"),
+            ("class A {\n  #b = 1;\n  static c\n  d() {}\n}", "class A{#b=1;static c\nd(){}}"),
+            ("typeof 'x' in y", "typeof'x'in y"),
+        ] {
+            assert_eq!(terse(script).unwrap(), short);
+        }
     }
 
     #[test]
