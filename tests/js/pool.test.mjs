@@ -35,11 +35,11 @@ const alive = (workers) => workers.filter((worker) => !worker.ended).length;
 test("a large file is recognised by a worker of its own, which ends with its answer", async () => {
   const { client: pool, workers } = client();
   await pool.ask({ kind: "program" });
-  assert.equal(await pool.ask({ kind: "kindOf", content: SMALL }), "kindOf");
+  assert.equal(await pool.ask({ kind: "roleOf", name: "a", content: SMALL }), "roleOf");
   assert.equal(workers.length, 1);
-  assert.equal(await pool.ask({ kind: "kindOf", content: LARGE }), "kindOf");
+  assert.equal(await pool.ask({ kind: "roleOf", name: "a", content: LARGE }), "roleOf");
   assert.deepEqual(workers.map((worker) => worker.ended), [false, true]);
-  assert.equal(await pool.ask({ kind: "kindOf", content: "a".repeat(LARGE.length) }), "kindOf");
+  assert.equal(await pool.ask({ kind: "roleOf", name: "a", content: "a".repeat(LARGE.length) }), "roleOf");
   assert.equal(workers.length, 3);
   assert.equal(alive(workers), 1);
 });
@@ -47,10 +47,10 @@ test("a large file is recognised by a worker of its own, which ends with its ans
 test("a fault of that worker, or its death, is told and ends it", async () => {
   const fault = { code: "input-too-large" };
   const refusing = client(() => ({ fault }));
-  await assert.rejects(refusing.client.ask({ kind: "kindOf", content: LARGE }), fault);
+  await assert.rejects(refusing.client.ask({ kind: "roleOf", name: "a", content: LARGE }), fault);
   assert.equal(alive(refusing.workers), 0);
   const silent = client(() => undefined);
-  const asked = silent.client.ask({ kind: "kindOf", content: LARGE });
+  const asked = silent.client.ask({ kind: "roleOf", name: "a", content: LARGE });
   silent.workers[0].say("error", { preventDefault() {}, message: "gone" });
   await assert.rejects(asked, { code: "worker-lost", details: "gone" });
   assert.equal(alive(silent.workers), 0);
