@@ -47,6 +47,8 @@ export function showElectrodes(session) {
   let order = "misfit";
   /** The order is no longer the values' one; it is set right when nobody is in the list. */
   let stale = false;
+  /** Whether one of the list's own rows is being pointed at. */
+  let within = false;
   /** The map whose values the list shows. */
   let shown = -1;
 
@@ -115,8 +117,18 @@ export function showElectrodes(session) {
       session.point(sheet.label);
     });
     box.addEventListener("blur", () => session.point(null));
-    row.addEventListener("pointerenter", () => session.point(sheet.label));
-    row.addEventListener("pointerleave", () => session.point(null));
+    // A row that scrolls under a resting mouse is not pointed at, and the list does not scroll for its own rows.
+    row.addEventListener("pointermove", ({ movementX, movementY }) => {
+      if ((movementX === 0 && movementY === 0) || session.read().pointed === sheet.label) return;
+      within = true;
+      session.point(sheet.label);
+      within = false;
+    });
+    row.addEventListener("pointerleave", () => {
+      if (session.read().pointed !== sheet.label) return;
+      const focused = [...lines.values()].find((line) => line.box === document.activeElement);
+      session.point(focused?.sheet.label ?? null);
+    });
     return { row, box, cells, sheet, at };
   }
 
@@ -173,7 +185,7 @@ export function showElectrodes(session) {
     (pointed) => {
       for (const [label, { row }] of lines) row.classList.toggle("pointed", label === pointed);
       const row = lines.get(pointed ?? "")?.row;
-      if (row !== undefined && !list.matches(":hover, :focus-within")) {
+      if (row !== undefined && !within && !list.matches(":hover, :focus-within")) {
         const beside = row.offsetTop - (list.clientHeight - row.offsetHeight) / 2;
         list.scrollTop = beside;
       }
