@@ -421,7 +421,7 @@ fn heads_from_40_to_120_mm_are_computed() {
     let set = Electrodes::set(32);
     let values = Draw::from(8).noise(32);
     let maps = set.maps(&[("noise", &values)]);
-    for (radius, good) in [(40.5, true), (119.5, true), (39.5, false), (120.5, false)] {
+    for (radius, good) in [(40.0, true), (40.5, true), (119.5, true), (120.0, true), (39.5, false), (120.5, false)] {
         let positions: Vec<Vec3> = set.directions.iter().map(|&e| e * radius).collect();
         assert_eq!(try_run(Some(&set.table(&positions)), &maps, Settings::default()).is_ok(), good, "{radius}");
     }

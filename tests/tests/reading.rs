@@ -1,8 +1,8 @@
 //! Tables are told apart by their content, labels find their standard places.
 use inward_core::Vec3;
 use inward_core::electrode::{Label, nearest_site, standard_position};
-use inward_core::kind;
 use inward_core::understand::Kind;
+use inward_core::{MapReport, Request, analyse, kind};
 use inward_tests::{Draw, Electrodes, Mixture, PlainSeries, data, example};
 
 fn headless(table: &str) -> String {
@@ -70,4 +70,76 @@ fn labels_stand_at_the_standard_positions() {
         assert_eq!(standard_position(&Label::new(old)), standard_position(&Label::new(new)));
     }
     assert_eq!(standard_position(&Label::new("E12")), None);
+}
+
+const LABELS: [&str; 20] = [
+    "Fp1", "Fp2", "F7", "F3", "Fz", "F4", "F8", "T7", "C3", "Cz", "C4", "T8", "P7", "P3", "Pz", "P4", "P8", "O1", "Oz",
+    "O2",
+];
+
+/// How many maps a table holds, and the first one's name and values.
+fn first_map(electrodes: Option<&str>, maps: &str) -> (usize, String, Vec<f64>) {
+    let (electrodes, maps) = (electrodes.map(str::as_bytes), maps.as_bytes());
+    let report = analyse(&Request { electrodes, maps, ..Request::default() });
+    let report = report.unwrap_or_else(|error| panic!("{error:?}: {}", String::from_utf8_lossy(maps)));
+    let MapReport::Fitted(map) = &report.maps[0] else { panic!("{report:?}") };
+    (report.maps.len(), map.name.clone(), map.measured.clone())
+}
+
+/// Tables that could be taken for more than they hold, or the wrong way round.
+#[test]
+fn tables_hold_what_a_reader_sees_in_them() {
+    let places: Vec<Vec3> = LABELS.iter().map(|label| standard_position(&Label::new(label)).unwrap()).collect();
+    let values: Vec<String> = places.iter().map(|p| format!("{:.1}", 10.0 * p[0] - 4.0 * p[1] * p[2] + 3.05)).collect();
+    let table = |row: &dyn Fn(usize) -> String| (0..LABELS.len()).map(|i| row(i) + "\n").collect::<String>();
+    let place = |i: usize| format!("{}\t{}\t{}", 90.0 * places[i][0], 90.0 * places[i][1], 90.0 * places[i][2]);
+    let plain = table(&|i| format!("{}\t{}", LABELS[i], values[i]));
+    let electrodes = table(&|i| format!("{}\t{}", LABELS[i], place(i)));
+    let expected = first_map(Some(&electrodes), &plain).2;
+    let same = |electrodes: Option<&str>, maps: &str, count: usize, name: &str| {
+        let (found, first, measured) = first_map(electrodes, maps);
+        assert_eq!((found, first.as_str()), (count, name), "{maps}");
+        assert!(measured.iter().zip(&expected).all(|(a, b)| (a - b).abs() < 1e-9), "{maps}");
+    };
+    let comma = table(&|i| values[i].replace('.', ","));
+    same(Some(&electrodes), &comma, 1, "map 1");
+    // Numbers of rows before the labels, picked, sorted or counted down.
+    for number in [|i: usize| 2 * i + 3, |i: usize| i + 1 + usize::from(i > 4), |i: usize| 20 - i] {
+        same(None, &table(&|i| format!("{}\t{}\t{}", number(i), LABELS[i], values[i])), 1, "map 1");
+        let electrodes = table(&|i| format!("{}\t{}\t{}", number(i), LABELS[i], place(i)));
+        same(Some(&electrodes), &plain, 1, "map 1");
+    }
+    // Values beside positions without names, or with names of their own.
+    let beside = table(&|i| format!("{}\t{}\t{}", LABELS[i], place(i), values[i]));
+    same(None, &beside, 1, "map 1");
+    same(None, &format!("label\tpos_x\tpos_y\tpos_z\tleft\n{beside}"), 1, "left");
+    // Maps in rows: named like sites, by times, by numbers.
+    let row = values.join("\t");
+    for (corner, names) in [("map", ["M1", "M2", "F3"]), ("time", ["-4", "0", "4"]), ("", ["0", "1", "2"])] {
+        let rows: String = names.iter().map(|name| format!("{name}\t{row}\n")).collect();
+        same(None, &format!("{corner}\t{}\n{rows}", LABELS.join("\t")), 3, names[0]);
+    }
+    // Neither table has words: numbers name the electrodes, else their order.
+    let numbered = table(&|i| format!("{}\t{}", i + 1, place(i)));
+    let bare = table(&place);
+    same(Some(&numbered), &table(&|i| format!("{}\t{}", i + 1, values[i])), 1, "map 1");
+    same(Some(&bare), &table(&|i| values[i].clone()), 1, "map 1");
+    let backwards: String = (0..20).rev().map(|i| format!("{}\t{}\n", i + 1, values[i])).collect();
+    let (count, _, measured) = first_map(Some(&numbered), &backwards);
+    assert_eq!(count, 1);
+    assert!(measured.iter().rev().zip(&expected).all(|(a, b)| (a - b).abs() < 1e-9));
+    // Angles named theta and phi, whichever comes first.
+    for elevation in [false, true] {
+        let polar = |p: Vec3| if elevation { p[2].asin() } else { p[2].acos() }.to_degrees();
+        let row = |i: usize| {
+            format!("{}\t{}\t{}", LABELS[i], places[i][1].atan2(places[i][0]).to_degrees(), polar(places[i]))
+        };
+        same(Some(&format!("label\ttheta\tphi\n{}", table(&row))), &plain, 1, "map 1");
+    }
+    // A letter is no list of labels, a page of the web no table.
+    for text in ["Dear all,\nthe weather\nis fine,\n", "<!DOCTYPE html><p>Fp1", "{\\rtf1 Fp1"] {
+        assert_eq!(kind(text.as_bytes()), Kind::Maps, "{text}");
+        let request = Request { maps: text.as_bytes(), ..Request::default() };
+        assert!(analyse(&request).is_err());
+    }
 }

@@ -19,5 +19,5 @@ pub use sphere::{Sphere, SphereFit};
 /// Cuffin & Cohen 1979 (EEG Clin Neurophysiol 47:132–146).
 pub const STANDARD_RADIUS_MM: f64 = 88.0;
 
-/// Radii in millimetres that a head may have, from infants to large adults.
-pub const HEAD_RADII_MM: core::ops::RangeInclusive<f64> = 40.0..=120.0;
+/// Radii in millimetres that a head may have, 40 to 120 with what rounded positions add: from infants to large adults.
+pub const HEAD_RADII_MM: core::ops::RangeInclusive<f64> = 39.95..=120.05;

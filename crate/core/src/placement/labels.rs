@@ -264,7 +264,8 @@ fn reference(names: &mut Names, rows: &[usize], maps: &Maps, wishes: &Wishes) ->
         && 2 * most.len() > sites
         && most.len() > 1
     {
-        return Ok(most.first().and_then(|&row| text(row)));
+        let named = |text: &String| text.contains(char::is_alphabetic);
+        return Ok(most.first().and_then(|&row| text(row)).filter(named));
     }
     let labels = |rows: &[usize]| -> Vec<String> {
         rows.iter().filter_map(|&row| names.labels.get(row)).map(|l| l.to_string()).collect()

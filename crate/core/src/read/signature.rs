@@ -5,13 +5,18 @@ use super::{mat, npy, zip};
 use crate::finding::{Code, Error, Finding};
 
 /// Beginnings of files that hold no table, with the key of what they are.
-const OTHERS: [(&[u8], &str); 12] = [
+const OTHERS: [(&[u8], &str); 17] = [
     (b"\x89PNG\r\n\x1a\n", "picture"),
     (b"\xff\xd8\xff", "picture"),
     (b"GIF8", "picture"),
     (b"%PDF-", "pdf"),
     // What office programs wrote before they packed their files.
     (b"\xd0\xcf\x11\xe0\xa1\xb1\x1a\xe1", "office"),
+    (b"{\\rtf", "office"),
+    (b"<!DOCTYPE", "markup"),
+    (b"<!doctype", "markup"),
+    (b"<html", "markup"),
+    (b"<?xml", "markup"),
     (b"\x1f\x8b", "packed-file"),
     (b"BZh9", "packed-file"),
     (b"\xfd7zXZ\0", "packed-file"),
@@ -44,7 +49,8 @@ pub fn container(file: &[u8]) -> Result<Option<Format>, Error> {
     }
     let known = OTHERS.iter().find(|(begin, what)| {
         // A table may begin with a naught and blanks; a recording goes on with numbers at fixed places.
-        file.starts_with(begin) && (*what != "recording" || is_recording(file))
+        let text = file.strip_prefix(b"\xef\xbb\xbf").unwrap_or(file);
+        text.starts_with(begin) && (*what != "recording" || is_recording(file))
     });
     match known {
         Some((_, what)) => Err(no_table(what)),

@@ -181,8 +181,13 @@ fn sniffed(text: &str) -> Delimiter {
     if found != comma {
         return found;
     }
+    // One number in each line may also have a decimal comma, unless what stands before it counts the lines.
     let blanks = sample(Delimiter::Blanks);
-    let wide = blanks.counts.iter().all(|&count| count > 1);
+    let whole = |row: &str| number(row.split(',').next().unwrap_or_default());
+    let before: Vec<Option<f64>> = blanks.fields().map(|(_, field)| whole(field)).collect();
+    let counted = before.windows(2).all(|pair| matches!(pair, [Some(one), Some(next)] if *next == one + 1.0));
+    let wide =
+        blanks.counts.iter().all(|&count| count > 1) || blanks.counts.iter().all(|&count| count == 1) && !counted;
     let mut with_comma = blanks.fields().map(|(_, field)| field).filter(|field| field.contains(','));
     if wide && with_comma.all(has_decimal_comma) { Delimiter::Blanks } else { found }
 }

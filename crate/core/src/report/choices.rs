@@ -109,6 +109,9 @@ pub fn sentence(choice: &Choice) -> String {
         "columns.x" => format!("x stands in {value}"),
         "columns.y" => format!("y stands in {value}"),
         "columns.z" => format!("z stands in {value}"),
+        "columns.polar" => format!("The polar angle stands in {value}"),
+        "columns.azimuth" => format!("The azimuth stands in {value}"),
+        "columns.radius" => format!("The radius stands in {value}"),
         "angles.polar" => format!("The polar angle is {value}"),
         "angles.unit" => format!("Angles are in {value} (the largest is {})", number("largest")),
         "orientation" => format!("The table has {value}"),
@@ -196,7 +199,7 @@ pub fn option_label(setting: &str, value: &Value, own: Option<&str>) -> String {
         ("mirror", "yes") => "exchange left and right",
         ("mirror", "no") => "keep them as written",
         ("axes", name) if name != "oblique" => return axes_words(name),
-        ("label", _) | ("columns.label" | "columns.x" | "columns.y" | "columns.z", _) => {
+        (setting, _) if setting == "label" || setting.starts_with("columns.") => {
             return match own {
                 Some(name) => format!("column {text}, “{name}”"),
                 None => format!("column {text}"),

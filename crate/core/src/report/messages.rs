@@ -59,12 +59,12 @@ pub fn message(finding: &Finding) -> String {
                 value("why")
             )
         }
-        Code::ArrayType => format!("The array holds “{}” (byte {byte}): {}.", value("found"), value("why")),
+        Code::ArrayType => format!("The array in the {input} holds “{}” (byte {byte}): {}.", value("found"), value("why")),
         Code::ArraySize if finding.value("dimensions").is_some() => {
-            format!("The array has {} dimensions (byte {byte}); one or two are read.", value("dimensions"))
+            format!("The array in the {input} has {} dimensions (byte {byte}); one or two are read.", value("dimensions"))
         }
         Code::ArraySize => format!(
-            "The array is said to hold {} × {} entries (byte {byte}); at most {} × {} are read, either way round.",
+            "The array in the {input} is said to hold {} × {} entries (byte {byte}); at most {} × {} are read, either way round.",
             value("rows"),
             value("columns"),
             value("most_electrodes"),
@@ -571,6 +571,7 @@ fn reason(key: &str) -> &'static str {
         "zip-method" => "it is packed by another method than deflate",
         "picture" => "a picture",
         "pdf" => "a PDF document",
+        "markup" => "a page or a document in a markup language",
         "office" => "a spreadsheet or another office document",
         "packed-file" => "a packed file of a kind that is not read",
         "database" => "a database",

@@ -221,6 +221,27 @@ impl<'a> Grid<'a> {
         first.is_some() && self.height() > 2 && (0..self.height()).all(follows)
     }
 
+    /// Whether a column numbers the rows: it counts them, or, before the labels, holds whole numbers that only rise or
+    /// only fall, as where rows were picked or sorted.
+    pub fn numbers_rows(&self, column: usize, label: Option<usize>) -> bool {
+        let number = |row: usize| self.number(row, column).filter(|number| number.fract() == 0.0);
+        let ordered = |way: f64| {
+            (1..self.height()).all(|row| number(row - 1).zip(number(row)).is_some_and(|(a, b)| way * a < way * b))
+        };
+        self.counts(column)
+            || label.is_some_and(|label| column < label) && self.height() > 2 && (ordered(1.0) || ordered(-1.0))
+    }
+
+    /// The first column, where it holds each number from 1, or from 0, once: a table without words may name its electrodes so.
+    pub fn numbered(&self) -> Option<usize> {
+        let mut numbers: Vec<f64> = (0..self.height()).map_while(|row| self.number(row, 0)).collect();
+        let all = numbers.len() == self.height() && self.width() > 1 && self.words().is_none();
+        numbers.sort_by(f64::total_cmp);
+        let first = numbers.first().copied().filter(|first| *first == 0.0 || *first == 1.0)?;
+        let counts = numbers.iter().enumerate().all(|(index, number)| *number == first + index as f64);
+        (all && counts && numbers.len() > 2).then_some(0)
+    }
+
     fn is_word(&self, row: usize, column: usize) -> bool {
         let word = self.word(row, column);
         !is_missing(word) && self.parse(word).is_none()

@@ -30,13 +30,14 @@ pub(super) fn read_maps(
     grid: &Grid<'_>,
     beside: &[usize],
     known: &[Vec<Label>],
+    numbered: Option<usize>,
     wishes: &Wishes,
     found: &mut Found,
 ) -> Result<Read, Error> {
     let first = Place { line: Some(grid.first_line()), ..found.place(INPUT, grid) };
     let none = || Error::from(Finding::new(Code::MapsNone).at(first.clone()));
-    let label = label_wish(grid, wishes, None, found)?;
-    let (columns, passed_over) = value_columns(grid, label, beside);
+    let mut label = label_wish(grid, wishes, None, found)?.or(numbered);
+    let (mut columns, mut passed_over) = value_columns(grid, label, beside);
     let keys: HashSet<String> = known.iter().flatten().map(Label::key).collect();
     let (orientation, from) = orientation(grid, label, &columns, known, &keys, wishes);
     let Some(orientation) = orientation else {
@@ -51,6 +52,14 @@ pub(super) fn read_maps(
             }
         });
     };
+    if orientation == Orientation::ChannelsInColumns && label.is_none() {
+        label = if names_maps(grid, &columns, &keys) {
+            Some(columns.remove(0))
+        } else {
+            // What counts the rows counts the maps here.
+            passed_over.iter().position(|&column| grid.counts(column)).map(|index| passed_over.remove(index))
+        };
+    }
     if columns.is_empty() || grid.height() == 0 {
         return Err(none());
     }
@@ -133,6 +142,24 @@ pub(super) fn read_maps(
     Ok(Read { maps: Maps { labels, lines, names, values }, labelled })
 }
 
+/// Whether the first of several columns, one for each channel, holds the times or the numbers of the maps: it says so, or has
+/// no name or none of a channel, and rises.
+fn names_maps(grid: &Grid<'_>, columns: &[usize], keys: &HashSet<String>) -> bool {
+    let &[first, _, ..] = columns else { return false };
+    let name = grid.name(first).trim().to_lowercase();
+    let value = |row: usize| grid.number(row, first);
+    let rises = (1..grid.height()).all(|row| value(row - 1).zip(value(row)).is_some_and(|(one, next)| one < next));
+    let says = name.starts_with("time") || ["t", "latency", "sample", "index"].contains(&name.as_str());
+    let has_names = grid.header != Header::Absent;
+    let channel = is_label(&name, keys);
+    has_names && !channel && rises && (says || name.is_empty() || grid.height() > 2)
+}
+
+fn is_label(name: &str, keys: &HashSet<String>) -> bool {
+    let label = Label::new(name);
+    keys.contains(&label.key()) || matches!(Reading::of(&label).kind, Kind::Site(_))
+}
+
 fn unnamed(labels: &[Label]) -> bool {
     labels.iter().all(|label| label.as_str().is_empty())
 }
@@ -150,6 +177,7 @@ fn value_columns(grid: &Grid<'_>, label: Option<usize>, beside: &[usize]) -> (Ve
         let name = grid.name(column);
         let plain = ["", "no", "nr", "no.", "#", "number", "index", "id"].iter().any(|n| name.eq_ignore_ascii_case(n));
         plain && grid.counts(column)
+            || label.is_some_and(|label| column < label) && grid.numbers_rows(column, label.into())
     };
     let (values, passed_over): (Vec<usize>, Vec<usize>) = if beside.is_empty() {
         others.partition(|&column| !only_words(column) && !counting(column))
@@ -173,26 +201,22 @@ fn orientation(
     if let Some(wish) = wishes.orientation {
         return (Some(wish), Origin::Setting);
     }
-    let is_label = |name: &str| {
-        let label = Label::new(name);
-        keys.contains(&label.key()) || matches!(Reading::of(&label).kind, Kind::Site(_))
-    };
-    // Shares of names that are labels, in percent.
+    // How many percent of the names are labels, and how many they are: of two maps `M1` and `M2` all are.
     let share = |names: &mut dyn Iterator<Item = &str>| {
         let (mut labels, mut all) = (0, 0);
         for name in names.take(SAMPLE) {
             all += 1;
-            labels += usize::from(is_label(name));
+            labels += usize::from(is_label(name, keys));
         }
-        (100 * labels).checked_div(all).unwrap_or(0)
+        ((100 * labels).checked_div(all).unwrap_or(0), labels)
     };
     let above = share(&mut columns.iter().map(|&column| grid.name(column)));
     let beside = share(&mut (0..grid.height()).filter_map(|row| Some(grid.word(row, label?))));
-    if above >= 50 && above > beside {
+    if above.0 >= 50 && above > beside {
         return (Some(Orientation::ChannelsInColumns), Origin::Found);
     }
     if label.is_some() {
-        return (Some(Orientation::ChannelsInRows), if beside >= 50 { Origin::Found } else { Origin::Assumed });
+        return (Some(Orientation::ChannelsInRows), if beside.0 >= 50 { Origin::Found } else { Origin::Assumed });
     }
     let fits = |side: usize| known.iter().any(|labels| labels.len() == side && !unnamed(labels));
     let unmixing = wishes.maps_are == Some(MapsAre::Unmixing);

@@ -354,9 +354,15 @@ impl Chosen {
         let maps_grid = grid(self.maps).ok_or_else(lost)?;
         let mut columns: Vec<(usize, Columns)> = Vec::new();
 
+        // Where neither table has words, numbers or the order name the electrodes.
+        let wordless = self.labels.is_empty()
+            && self.electrodes != Some(self.maps)
+            && maps_grid.header == Header::Absent
+            && label_wish(maps_grid, wishes, None, &found)?.is_none();
         let mut electrodes = None;
         if let Some(electrode_grid) = self.electrodes.and_then(grid) {
             let label = label_wish(electrode_grid, wishes, wishes.columns.label.as_ref(), &found)?;
+            let label = label.or_else(|| electrode_grid.numbered().filter(|_| wordless));
             let read = positions::read_electrodes(electrode_grid, label, &wishes.columns, &wishes.angles, &mut found)?;
             columns.push((self.electrodes.unwrap_or_default(), std::mem::take(&mut found.columns)));
             electrodes = Some((read, label.is_some(), electrode_grid));
@@ -379,6 +385,10 @@ impl Chosen {
             read.iter_mut().zip(list).for_each(|(electrode, label)| electrode.label = label.clone());
             by_order.push(electrode_grid.file);
         }
+        if let Some((read, false, _)) = electrodes.as_mut().filter(|_| wordless) {
+            let numbers = (1..).map(|number: usize| Label::new(&number.to_string()));
+            read.iter_mut().zip(numbers).for_each(|(electrode, number)| electrode.label = number);
+        }
         let known: Vec<Vec<Label>> = lists
             .iter()
             .cloned()
@@ -393,7 +403,8 @@ impl Chosen {
             // Positions that other ones replace.
             Some(maps_grid).filter(|grid| !grid.is_numeric()).and_then(positions::named).unwrap_or_default()
         };
-        let read = maps::read_maps(maps_grid, &beside, &known, wishes, &mut found)?;
+        let numbered = maps_grid.numbered().filter(|_| wordless && electrodes.is_some());
+        let read = maps::read_maps(maps_grid, &beside, &known, numbered, wishes, &mut found)?;
         let maps_columns = std::mem::take(&mut found.columns);
         match columns.iter_mut().find(|(index, _)| *index == self.maps) {
             Some((_, known)) => {

@@ -62,6 +62,14 @@ pub(super) fn read_electrodes(
     {
         return Err(lacks("coordinates"));
     }
+    let places = match places {
+        Some(Places::Angles { polar, azimuth, radius })
+            if turned == [None, None] && swapped(grid, label, [polar, azimuth], angles) =>
+        {
+            Some(Places::Angles { polar: azimuth, azimuth: polar, radius })
+        }
+        _ => places,
+    };
     let meaning = match places {
         Some(Places::Angles { polar, azimuth, radius }) => {
             Some(meaning(grid, label, [polar, azimuth], radius, angles, found))
@@ -78,6 +86,17 @@ pub(super) fn read_electrodes(
         {
             let from = if wish.is_some() { Origin::Setting } else { Origin::Found };
             found.choices.push(columns_choice(setting, grid, column, from, found));
+        }
+    }
+    if let Some(Places::Angles { polar, azimuth, radius: distance }) = places {
+        let angles = [
+            ("columns.polar", Some(polar), &wishes.polar),
+            ("columns.azimuth", Some(azimuth), &wishes.azimuth),
+            ("columns.radius", distance, &wishes.radius),
+        ];
+        for (setting, column, wish) in angles {
+            let from = if wish.is_some() { Origin::Setting } else { Origin::Found };
+            found.choices.extend(column.map(|column| columns_choice(setting, grid, column, from, found)));
         }
     }
     let mut electrodes = Vec::with_capacity(grid.height());
@@ -141,29 +160,9 @@ fn meaning(
     wishes: &AngleWishes,
     found: &mut Found,
 ) -> (Polar, AngleUnit) {
-    let largest = [polar, azimuth]
-        .iter()
-        .flat_map(|&column| (0..grid.height()).filter_map(move |row| grid.number(row, column)))
-        .fold(0.0, |most: f64, angle| most.max(angle.abs()));
-    let says =
-        |word: &str| [polar, azimuth].iter().any(|&column| grid.name(column).to_ascii_lowercase().contains(word));
-    let (unit, unit_from) = match wishes.unit {
-        Some(unit) => (unit, Origin::Setting),
-        None if says("deg") || says("°") => (AngleUnit::Degrees, Origin::Declared),
-        None if says("rad") && !says("radius") => (AngleUnit::Radians, Origin::Declared),
-        None if largest > 2.2 * PI => (AngleUnit::Degrees, Origin::Found),
-        None => (AngleUnit::Radians, Origin::Found),
-    };
-    let misfit = |from: Polar| {
-        let rows = (0..grid.height()).filter_map(|row| {
-            let site = standard_position(&Label::new(grid.word(row, label?)))?;
-            let point = on_sphere(grid.number(row, polar)?, grid.number(row, azimuth)?, 1.0, from, unit);
-            Some((point[2] - site[2]).abs())
-        });
-        rows.fold((0, 0.0), |(count, sum), off| (count + 1, sum + off))
-    };
-    let (sites, as_inclination) = misfit(Polar::Inclination);
-    let (_, as_elevation) = misfit(Polar::Elevation);
+    let (unit, unit_from, largest) = unit_of(grid, [polar, azimuth], wishes);
+    let (sites, as_inclination) = misfit(grid, label, polar, Polar::Inclination, unit);
+    let (_, as_elevation) = misfit(grid, label, polar, Polar::Elevation, unit);
     let name = bare(grid.name(polar));
     let (from, origin) = match wishes.polar {
         Some(from) => (from, Origin::Setting),
@@ -194,6 +193,45 @@ fn meaning(
             .with("radius", radius.is_some()),
     );
     (from, unit)
+}
+
+/// The unit of angles, how it was told, and the largest of them.
+fn unit_of(grid: &Grid<'_>, columns: [usize; 2], wishes: &AngleWishes) -> (AngleUnit, Origin, f64) {
+    let largest = columns
+        .iter()
+        .flat_map(|&column| (0..grid.height()).filter_map(move |row| grid.number(row, column)))
+        .fold(0.0, |most: f64, angle| most.max(angle.abs()));
+    let says = |word: &str| columns.iter().any(|&column| grid.name(column).to_ascii_lowercase().contains(word));
+    let (unit, from) = match wishes.unit {
+        Some(unit) => (unit, Origin::Setting),
+        None if says("deg") || says("°") => (AngleUnit::Degrees, Origin::Declared),
+        None if says("rad") && !says("radius") => (AngleUnit::Radians, Origin::Declared),
+        None if largest > 2.2 * PI => (AngleUnit::Degrees, Origin::Found),
+        None => (AngleUnit::Radians, Origin::Found),
+    };
+    (unit, from, largest)
+}
+
+/// How many labels have a standard height, and the sum of what a polar angle differs from it.
+fn misfit(grid: &Grid<'_>, label: Option<usize>, polar: usize, from: Polar, unit: AngleUnit) -> (usize, f64) {
+    let rows = (0..grid.height()).filter_map(|row| {
+        let site = standard_position(&Label::new(grid.word(row, label?)))?;
+        Some((on_sphere(grid.number(row, polar)?, 0.0, 1.0, from, unit)[2] - site[2]).abs())
+    });
+    rows.fold((0, 0.0), |(count, sum), off| (count + 1, sum + off))
+}
+
+/// Whether columns named theta and phi hold the azimuth first, as some write them: where the heights of five standard
+/// labels or more fit the second much better.
+fn swapped(grid: &Grid<'_>, label: Option<usize>, columns: [usize; 2], wishes: &AngleWishes) -> bool {
+    let [theta, phi] = columns.map(|column| grid.name(column).to_ascii_lowercase());
+    let (unit, ..) = unit_of(grid, columns, wishes);
+    let best = |column: usize| {
+        let [one, other] = [Polar::Inclination, Polar::Elevation].map(|from| misfit(grid, label, column, from, unit));
+        (one.0, one.1.min(other.1))
+    };
+    let [(sites, as_named), (_, exchanged)] = columns.map(best);
+    theta.contains("theta") && phi.contains("phi") && sites >= 5 && exchanged < 0.5 * as_named
 }
 
 /// The columns that names tell to hold positions; `None` where no names do.
@@ -240,8 +278,8 @@ fn bare(name: &str) -> String {
 
 /// The first three columns of numbers that do not count the rows, where there are three.
 fn unnamed(grid: &Grid<'_>, label: Option<usize>) -> Option<[usize; 3]> {
-    let mut others =
-        (0..grid.width()).filter(|&column| Some(column) != label && !grid.counts(column) && grid.has_numbers(column));
+    let mut others = (0..grid.width())
+        .filter(|&column| Some(column) != label && !grid.numbers_rows(column, label) && grid.has_numbers(column));
     Some([others.next()?, others.next()?, others.next()?])
 }
 

@@ -1,5 +1,6 @@
 use super::grid::{Grid, Header};
 use super::{Role, positions};
+use crate::electrode::{Kind as LabelKind, Label, Reading};
 use crate::head::{LengthUnit, Sphere, SphereFit, spread};
 use crate::math::Vec3;
 use crate::read::{Body, Content, Record, is_label_name};
@@ -50,14 +51,33 @@ pub(super) fn role_of(grid: &Grid<'_>) -> Role {
     }
     let Some(label) = label else { return Role::Maps };
     let numeric: Vec<usize> = (0..grid.width())
-        .filter(|&column| column != label && !grid.counts(column) && grid.has_numbers(column))
+        .filter(|&column| column != label && !grid.numbers_rows(column, Some(label)) && grid.has_numbers(column))
         .take(4)
         .collect();
     match numeric.as_slice() {
-        [] if grid.height() > 1 && (grid.header == Header::Absent || is_label_name(grid.name(label))) => Role::Labels,
-        [x, y, z] if grid.header == Header::Absent && is_head(grid, [*x, *y, *z]) => Role::Electrodes,
+        [] if grid.height() > 1 && is_list(grid, label) => Role::Labels,
+        [x, y, z, more @ ..] if may_be_axes(grid, [*x, *y, *z]) && is_head(grid, [*x, *y, *z]) => {
+            if more.is_empty() {
+                Role::Electrodes
+            } else {
+                Role::ElectrodesAndMaps
+            }
+        }
         _ => Role::Maps,
     }
+}
+
+/// Whether words are a list of labels, and not sentences of a letter: of one column, under a usual name, or with a site.
+fn is_list(grid: &Grid<'_>, label: usize) -> bool {
+    let site = |row: usize| matches!(Reading::of(&Label::new(grid.word(row, label))).kind, LabelKind::Site(_));
+    let plain = grid.width() == 1 || (0..grid.height()).any(site);
+    is_label_name(grid.name(label)) || grid.header == Header::Absent && plain
+}
+
+/// Whether three columns have no names, or names with x, y and z in them.
+fn may_be_axes(grid: &Grid<'_>, columns: [usize; 3]) -> bool {
+    let named = |(column, axis): (usize, char)| grid.name(column).to_ascii_lowercase().contains(axis);
+    grid.header == Header::Absent || columns.into_iter().zip(['x', 'y', 'z']).all(named)
 }
 
 fn role_of_numbers(grid: &Grid<'_>, part: &str) -> Role {
@@ -84,7 +104,7 @@ pub(super) fn values_beside<'g>(
         Some(column) != label
             && !used.contains(&column)
             && !BESIDE_POSITIONS.iter().any(|known| name.eq_ignore_ascii_case(known))
-            && !grid.counts(column)
+            && !grid.numbers_rows(column, label)
             && grid.has_numbers(column)
     })
 }
