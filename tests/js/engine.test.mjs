@@ -3,8 +3,8 @@ import assert from "node:assert/strict";
 import { readFileSync } from "node:fs";
 import { test } from "node:test";
 import { pathToFileURL } from "node:url";
-import { gunzipSync } from "node:zlib";
 
+import { unpacked } from "../../www/text/packed.js";
 import "./trap.js";
 
 const dist = process.env.INWARD_DIST;
@@ -423,12 +423,12 @@ test("65,536 maps are read, one more is an error", { timeout: 300_000 }, () => {
   assert.equal(thrown(() => engine.open({ maps: wide(65_537) })).code, "maps-too-many");
 });
 
-test("the wasm in module and page is the same and holds no path of the machine that built it", () => {
-  const packed = (text, pattern) => gunzipSync(Buffer.from(pattern.exec(text)[1], "base64"));
+test("the wasm in module and page is the same and holds no path of the machine that built it", async () => {
+  const packed = async (text, pattern) => Buffer.from(await unpacked(pattern.exec(text)[1]).arrayBuffer());
   const module = readFileSync(`${dist}/engine/inward.mjs`, "utf8");
   const page = readFileSync(`${dist}/inward.html`, "utf8");
-  const inModule = packed(module, /WASM_GZIP_BASE64\s*=\s*"([^"]+)"/);
-  const inPage = packed(page, /<script[^>]*id="wasm"[^>]*>([^<]+)</);
+  const inModule = await packed(module, /WASM_PACKED\s*=\s*"([^"]+)"/);
+  const inPage = await packed(page, /<script[^>]*id="wasm"[^>]*>([^<]+)</);
   assert.ok(inModule.equals(inPage));
   for (const text of [module, page, inModule.toString("latin1")]) {
     for (const path of [process.env.HOME, ".cargo/registry", ".rustup/toolchains", new URL("../..", import.meta.url).pathname]) {

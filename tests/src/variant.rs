@@ -1,10 +1,10 @@
 //! Changed copies of the delivered page, for checks of what happens when something in it goes wrong.
 use crate::folder::Folder;
+use crate::packed::{packed, unpacked};
 use crate::place::dist_file;
 use base64::Engine;
 use base64::engine::general_purpose::STANDARD;
 use sha2::{Digest, Sha256};
-use std::io::Write;
 use std::path::PathBuf;
 
 /// The text of the page with changes made to it.
@@ -24,9 +24,7 @@ impl Variant {
     /// Puts script text in front of the workers' script.
     pub fn before_worker(self, script: &str) -> Self {
         let (start, end) = self.carried("worker");
-        let mut packer = flate2::write::GzEncoder::new(Vec::new(), flate2::Compression::fast());
-        write!(packer, "{script}\n{}", self.worker()).expect("memory takes it");
-        let packed = STANDARD.encode(packer.finish().expect("memory takes it"));
+        let packed = packed(&format!("{script}\n{}", self.worker()));
         Self(format!("{}{packed}{}", &self.0[..start], &self.0[end..]))
     }
 
@@ -75,7 +73,7 @@ impl Variant {
         tag + self.0[tag..].find('>').expect("a tag ends") + 1
     }
 
-    /// Where the base64 of what the page carries under this id starts and ends.
+    /// Where what the page carries packed under this id starts and ends.
     fn carried(&self, id: &str) -> (usize, usize) {
         let tag = self.0.find(&format!("id=\"{id}\">")).expect("the page carries that");
         let start = tag + self.0[tag..].find('>').expect("a tag ends") + 1;
@@ -85,8 +83,7 @@ impl Variant {
     /// The worker's script.
     pub fn worker(&self) -> String {
         let (start, end) = self.carried("worker");
-        let packed = STANDARD.decode(self.0[start..end].trim()).expect("base64");
-        std::io::read_to_string(flate2::read::GzDecoder::new(&packed[..])).expect("gzip of a script")
+        unpacked(&self.0[start..end])
     }
 }
 

@@ -5,6 +5,6 @@ import { compileWasm } from "./wasm.js";
 
 /** Everything after this one wait is synchronous. @returns {Promise<Engine>} */
 export async function openEngine() {
-  const module = await compileWasm(WASM_GZIP_BASE64);
+  const module = await compileWasm(WASM_PACKED);
   return makeEngine(() => module);
 }

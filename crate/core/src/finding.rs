@@ -432,6 +432,16 @@ impl Error {
     }
 }
 
+impl From<inward_numerics::shells::ShellFault> for Error {
+    fn from(fault: inward_numerics::shells::ShellFault) -> Self {
+        let mut finding = Finding::new(Code::HeadInvalid).at(Place::input("settings"));
+        if let Some(shell) = fault.shell {
+            finding = finding.with("shell", shell);
+        }
+        finding.with("why", fault.why).into()
+    }
+}
+
 impl From<Finding> for Error {
     fn from(finding: Finding) -> Self {
         Self(Box::new(finding))

@@ -7,8 +7,9 @@
 //! Every result is the same, bit for bit, natively and in WebAssembly: transcendental functions come from `libm`,
 //! sums run in a written order, and no arithmetic depends on the processor it runs on.
 
+pub use inward_numerics::{fit, forward, math, scene};
+
 pub mod finding;
-pub mod math;
 
 pub mod electrode;
 pub mod head;
@@ -20,13 +21,7 @@ pub mod understand;
 
 pub mod placement;
 
-pub mod forward;
-
-pub mod fit;
-
 pub mod assess;
-
-pub mod scene;
 
 pub mod report;
 

@@ -11,7 +11,7 @@ use std::ops::Range;
 use std::path::Path;
 
 /// Names that the build tool defines around the joined modules.
-const AMBIENT: [&str; 3] = ["wasmGlue", "wasm_bindgen", "WASM_GZIP_BASE64"];
+const AMBIENT: [&str; 3] = ["wasmGlue", "wasm_bindgen", "WASM_PACKED"];
 
 /// All modules of a folder by their paths in it.
 pub struct Modules(BTreeMap<String, Module>);

@@ -54,7 +54,7 @@ mod tests {
         std::fs::create_dir_all(&folder).unwrap();
         let planted = "pub fn f(x: f64, y: f32) -> (f64, f32) { (x.sin().mul_add(x, x.powi(2)), f32::exp(y)) }";
         std::fs::write(folder.join("planted.rs"), planted).unwrap();
-        for package in ["crate/core", "crate/wasm"] {
+        for package in ["crate/numerics", "crate/core", "crate/wasm"] {
             let mut clippy = workspace.command("clippy-driver");
             clippy.current_dir(&folder).env("CARGO_MANIFEST_DIR", workspace.root.join(package));
             clippy.args(["planted.rs", "--crate-type=lib", "--edition=2024", "--emit=metadata"]);

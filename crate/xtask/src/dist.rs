@@ -1,21 +1,21 @@
 //! What is delivered: `inward.html` and `engine/inward.mjs`.
 
 use crate::bundle::Modules;
-use crate::engine::{gzip, module, page_script, worker_script};
+use crate::engine::{module, page_script, worker_script};
 use crate::examples::examples;
 use crate::notices::notices;
+use crate::packed::packed;
 use crate::page::{LIMIT, Parts, page};
 use crate::wasm::{Compiled, compile};
 use crate::workspace::{Workspace, files, read};
 use anyhow::{Context, Result, bail};
-use base64::prelude::{BASE64_STANDARD, Engine};
 use std::path::Path;
 
 /// Everything that was made, kept for the scans.
 pub struct Dist {
     /// The module and its glue.
     pub compiled: Compiled,
-    /// The module as it is carried: compressed, base64.
+    /// The module as it is carried: packed.
     pub carried: String,
     /// The page.
     pub page: String,
@@ -32,23 +32,22 @@ pub fn build(workspace: &Workspace) -> Result<Dist> {
     let compiled = compile(workspace)?;
     let www = workspace.root.join("www");
     let modules = Modules::read(&www).context("in www")?;
-    let carried = BASE64_STANDARD.encode(gzip(&compiled.wasm)?);
+    let carried = packed(&compiled.wasm)?;
     let script = page_script(&modules.join("main.js")?)?;
     let worker = worker_script(&modules.join("engine/worker.js")?, &compiled.glue)?;
-    let packed = |text: &str| gzip(text.as_bytes()).map(|bytes| BASE64_STANDARD.encode(bytes));
     let parts = Parts {
         style: &styles(&www.join("style"))?,
         script: &script,
-        worker: &packed(&worker)?,
+        worker: &packed(worker.as_bytes())?,
         wasm: &carried,
-        notices: &packed(&notices(workspace)?)?,
+        notices: &packed(notices(workspace)?.as_bytes())?,
         examples: &examples(&workspace.root.join("example_maps"))?,
     };
     let page = page(&read(&www.join("index.html"))?, &parts)?;
     let module = module(&modules.join("engine/module.js")?, &compiled.glue, &carried);
     write(&workspace.dist.join("inward.html"), &page)?;
     write(&workspace.dist.join("engine/inward.mjs"), &module)?;
-    println!("{:>9} bytes  engine, {} compressed", compiled.wasm.len(), carried.len() / 4 * 3);
+    println!("{:>9} bytes  engine, {} packed", compiled.wasm.len(), carried.len());
     println!("{:>9} bytes  target/dist/engine/inward.mjs", module.len());
     println!("{:>9} bytes  target/dist/inward.html", page.len());
     if page.len() > LIMIT {

@@ -9,6 +9,7 @@ mod examples;
 mod lexer;
 mod licences;
 mod notices;
+mod packed;
 mod page;
 mod paths;
 mod reproduce;

@@ -10,11 +10,11 @@ pub struct Parts<'a> {
     pub style: &'a str,
     /// The page's own script.
     pub script: &'a str,
-    /// The worker's script, compressed, in base64.
+    /// The worker's script, packed.
     pub worker: &'a str,
-    /// The compressed module in base64, as text.
+    /// The compiled module, packed.
     pub wasm: &'a str,
-    /// The licence notices, compressed, in base64.
+    /// The licence notices, packed.
     pub notices: &'a str,
     /// The invented maps, as JSON.
     pub examples: &'a str,

@@ -16,7 +16,7 @@ pub fn check(workspace: &Workspace, dist: &Dist) -> Result<()> {
     let mut look =
         |name: &str, bytes: &[u8]| found.extend(first(&needles, bytes).map(|place| format!("{name}{place}")));
     look("the engine's module", &dist.compiled.wasm);
-    // The compressed module is looked at above; as base64 it could hold any short path by chance.
+    // The compressed module is looked at above; as text it could hold any short path by chance.
     look("inward.html", dist.page.replace(&dist.carried, "").as_bytes());
     look("engine/inward.mjs", dist.module.replace(&dist.carried, "").as_bytes());
     let tracked = tracked(workspace)?;

@@ -7,7 +7,7 @@ use sha2::{Digest, Sha256};
 /// Twelve hexadecimal digits of the SHA-256 over `Cargo.lock` and every file of the engine, paths included.
 pub fn stamp(workspace: &Workspace) -> Result<String> {
     let mut paths = vec![workspace.root.join("Cargo.lock")];
-    for package in ["crate/core", "crate/wasm"] {
+    for package in ["crate/numerics", "crate/core", "crate/wasm"] {
         paths.extend(files(&workspace.root.join(package))?);
     }
     let mut hash = Sha256::new();

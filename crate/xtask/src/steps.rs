@@ -18,7 +18,8 @@ pub fn test(workspace: &Workspace, install: bool) -> Result<()> {
         cargo(&["clippy", "--workspace", "--all-targets", "--locked", "--quiet", "--", "-Dwarnings"])
     });
     steps.step("clippy, browser", || {
-        let packages = ["--package=inward-core", "--package=inward-wasm", "--target", wasm::TARGET];
+        let packages =
+            ["--package=inward-numerics", "--package=inward-core", "--package=inward-wasm", "--target", wasm::TARGET];
         cargo(&[&["clippy", "--locked", "--quiet"], &packages[..], &["--", "-Dwarnings"]].concat())
     });
     steps.step("documentation", || {

@@ -4,14 +4,13 @@ mod axes;
 mod catalogue;
 mod length;
 mod orientation;
-mod shells;
 mod sphere;
 
 pub use axes::{Axes, AxesName};
 pub use catalogue::{CatalogueHead, catalogued, heads};
+pub use inward_numerics::shells::{Shell, ShellFault, ShellSpec, Shells, Tissue};
 pub use length::LengthUnit;
 pub use orientation::{Landmarks, Orientation};
-pub use shells::{Shell, ShellSpec, Shells, Tissue};
 pub(crate) use sphere::spread;
 pub use sphere::{Sphere, SphereFit};
 

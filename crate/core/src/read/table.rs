@@ -130,7 +130,7 @@ pub fn is_missing(field: &str) -> bool {
 /// The number that a field holds, of whatever size, written with a decimal point.
 pub fn number(field: &str) -> Option<f64> {
     // `parse` also takes words such as "inf" and "nan".
-    let plain = field.bytes().all(|b| b.is_ascii_digit() || b"+-.eE".contains(&b));
+    let plain = field.bytes().all(|b| matches!(b, b'0'..=b'9' | b'+' | b'-' | b'.' | b'e' | b'E'));
     if plain { field.parse().ok() } else { None }
 }
 
@@ -161,7 +161,7 @@ pub fn expect_number(field: &str, decimal_comma: bool, place: impl FnOnce() -> P
 
 /// The digits before the exponent.
 fn digits(field: &str) -> impl Iterator<Item = u8> {
-    field.bytes().take_while(|byte| !b"eE".contains(byte)).filter(u8::is_ascii_digit)
+    field.bytes().take_while(|byte| !matches!(byte, b'e' | b'E')).filter(u8::is_ascii_digit)
 }
 
 /// Whether a field is a number only if its comma is a decimal mark: `-1,5`, `,5`, `1,5e-3`.
@@ -208,10 +208,9 @@ impl Rows {
         let mut rows = Self::default();
         if most > SAMPLE {
             // Exactly what is needed, so that memory stays within a few times the file.
-            let bytes = || text.bytes();
-            let breaks = bytes().filter(|byte| b"\r\n".contains(byte)).count() + 1;
+            let breaks = text.bytes().filter(is_break).count() + 1;
             let fields = match delimiter.mark() {
-                Some(mark) => bytes().filter(|byte| char::from(*byte) == mark).count() + breaks,
+                Some(mark) => text.bytes().filter(|byte| char::from(*byte) == mark).count() + breaks,
                 None => text.len() / 2 + 1,
             };
             rows.ends.reserve_exact(fields);
@@ -220,7 +219,7 @@ impl Rows {
         let quotes = text.contains('"');
         let (mut rest, mut line, mut open) = (text, 1, false);
         while !rest.is_empty() && rows.counts.len() < most {
-            let end = rest.find(['\n', '\r']).unwrap_or(rest.len());
+            let end = rest.bytes().position(|byte| is_break(&byte)).unwrap_or(rest.len());
             let (content, _) = rest.split_at_checked(end).unwrap_or((rest, ""));
             let begun = content.trim_start();
             let mut used = content.len();
@@ -250,7 +249,8 @@ impl Rows {
                 rows.lines.push(u32::try_from(line).unwrap_or(u32::MAX));
             }
             let (passed, after) = rest.split_at_checked(used).unwrap_or((rest, ""));
-            line += line_breaks(passed) + 1;
+            // Only quotes hold line breaks.
+            line += if used > content.len() { line_breaks(passed) } else { 0 } + 1;
             rest = after.strip_prefix("\r\n").or_else(|| after.strip_prefix(['\n', '\r'])).unwrap_or(after);
         }
         if most > SAMPLE && rows.counts.len() >= most {
@@ -264,9 +264,14 @@ impl Rows {
     }
 
     fn field(&mut self, field: &str) {
-        let field = field.trim();
-        let inner = field.strip_prefix('\'').and_then(|field| field.strip_suffix('\''));
-        self.text.push_str(inner.unwrap_or(field));
+        let plain = |end: Option<&u8>| end.is_some_and(|byte| byte.is_ascii_graphic() && *byte != b'\'');
+        if plain(field.as_bytes().first()) && plain(field.as_bytes().last()) {
+            self.text.push_str(field);
+        } else {
+            let field = field.trim();
+            let inner = field.strip_prefix('\'').and_then(|field| field.strip_suffix('\''));
+            self.text.push_str(inner.unwrap_or(field));
+        }
         self.ends.push(u32::try_from(self.text.len()).unwrap_or(u32::MAX));
     }
 
@@ -346,6 +351,9 @@ impl Rows {
                 self.counts.iter_mut().take(1).for_each(|count| *count += 1);
             }
         }
+        if self.is_even(width) {
+            return Ok(title);
+        }
         let empty = self.empty_ends();
         let surplus = |row: usize, count: u32| count > width && count - width <= empty.get(row).copied().unwrap_or(0);
         let counts = self.counts.iter().enumerate();
@@ -392,6 +400,12 @@ impl Rows {
         Some(title)
     }
 
+    /// Whether every row has so many fields and the last one of the first is not empty, so that nothing is to be taken off.
+    fn is_even(&self, width: u32) -> bool {
+        let end = |field: u32| (field as usize).checked_sub(1).and_then(|field| self.ends.get(field)).copied();
+        self.counts.iter().all(|count| *count == width) && width > 0 && end(width) != end(width - 1)
+    }
+
     /// How many fields at the end of each row are empty.
     fn empty_ends(&self) -> Vec<u32> {
         let mut empty = vec![0; self.counts.len()];
@@ -408,8 +422,12 @@ fn is_blank(c: char) -> bool {
     c.is_whitespace() && c != '\n' && c != '\r'
 }
 
+fn is_break(byte: &u8) -> bool {
+    matches!(byte, b'\n' | b'\r')
+}
+
 fn line_breaks(text: &str) -> usize {
-    let breaks = text.bytes().filter(|byte| b"\r\n".contains(byte)).count();
+    let breaks = text.bytes().filter(is_break).count();
     breaks - text.matches("\r\n").count()
 }
 

@@ -176,8 +176,7 @@ fn value_columns(grid: &Grid<'_>, label: Option<usize>, beside: &[usize]) -> (Ve
     let counting = |column: usize| {
         let name = grid.name(column);
         let plain = ["", "no", "nr", "no.", "#", "number", "index", "id"].iter().any(|n| name.eq_ignore_ascii_case(n));
-        plain && grid.counts(column)
-            || label.is_some_and(|label| column < label) && grid.numbers_rows(column, label.into())
+        plain && grid.counts(column) || label.is_some_and(|label| column < label) && grid.numbers_rows(column, label)
     };
     let (values, passed_over): (Vec<usize>, Vec<usize>) = if beside.is_empty() {
         others.partition(|&column| !only_words(column) && !counting(column))

@@ -1,6 +1,6 @@
 use super::potential::Potential;
-use crate::head::Shells;
 use crate::math::Lanes;
+use crate::shells::Shells;
 
 /// The infinite series of Legendre terms of a layered sphere.
 ///

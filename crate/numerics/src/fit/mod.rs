@@ -163,7 +163,7 @@ fn normalise(map: &[f64]) -> Option<(Vec<f64>, f64)> {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::head::Shells;
+    use crate::shells::Shells;
 
     #[test]
     fn alone_or_in_a_batch_the_bits_are_equal() {

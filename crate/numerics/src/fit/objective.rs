@@ -152,8 +152,8 @@ impl Sums {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::head::Shells;
     use crate::math::{centre, dot};
+    use crate::shells::Shells;
 
     #[test]
     fn derivatives_agree_with_differences() {

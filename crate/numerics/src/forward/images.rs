@@ -1,7 +1,7 @@
 use super::potential::Potential;
 use super::{MAX_ECCENTRICITY, QUICK_TOLERANCE, Series};
-use crate::head::Shells;
 use crate::math::{Lanes, least_squares};
+use crate::shells::Shells;
 
 /// A layered sphere's lead field by a few image sources.
 ///

@@ -1,4 +1,4 @@
-use crate::finding::{Code, Error, Finding, Place};
+//! Concentric isotropic shells of a head.
 
 /// What a shell is made of; a name only, the physics is in its conductivity.
 pub type Tissue = String;
@@ -26,6 +26,15 @@ pub struct Shell {
     pub conductivity_s_per_m: f64,
 }
 
+/// What is wrong with stated shells.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct ShellFault {
+    /// The shell, counted from 1 at the innermost; `None` where it is their number.
+    pub shell: Option<usize>,
+    /// `shell-count`, `conductivity`, `ratio` or `outermost`.
+    pub why: &'static str,
+}
+
 /// Concentric isotropic shells, innermost first; sources lie in the innermost one.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Shells {
@@ -39,36 +48,45 @@ impl Shells {
     /// Checks and takes shells: 1 to [`Self::MOST`] of them, ratios ascending to exactly 1, conductivities positive.
     ///
     /// # Errors
-    /// `head-invalid`, naming the shell and what is wrong with it.
-    pub fn new(specs: Vec<ShellSpec>) -> Result<Self, Error> {
-        let invalid = |shell: usize, why: &str| {
-            Error::from(
-                Finding::new(Code::HeadInvalid).at(Place::input("settings")).with("shell", shell).with("why", why),
-            )
-        };
+    /// Which shell is wrong, and what is wrong with it.
+    pub fn new(specs: Vec<ShellSpec>) -> Result<Self, ShellFault> {
         if specs.is_empty() || specs.len() > Self::MOST {
-            let why = "shell-count";
-            return Err(Finding::new(Code::HeadInvalid).at(Place::input("settings")).with("why", why).into());
+            return Err(ShellFault { shell: None, why: "shell-count" });
         }
         let mut inner = 0.05;
         for (index, spec) in specs.iter().enumerate() {
+            let fault = |why| Err(ShellFault { shell: Some(index + 1), why });
             if !(spec.conductivity >= 1e-6 && spec.conductivity <= 1e3) {
-                return Err(invalid(index + 1, "conductivity"));
+                return fault("conductivity");
             }
             if !(spec.ratio > inner && spec.ratio <= 1.0) {
-                return Err(invalid(index + 1, "ratio"));
+                return fault("ratio");
             }
             inner = spec.ratio;
         }
         if inner != 1.0 {
-            return Err(invalid(specs.len(), "outermost"));
+            return Err(ShellFault { shell: Some(specs.len()), why: "outermost" });
         }
         Ok(Self { specs })
     }
 
-    /// The default head, the first of [`super::heads`].
+    /// The default head: radii of Cuffin & Cohen 1979 (EEG Clin Neurophysiol 47:132–146); conductivities of brain and
+    /// scalp of Geddes & Baker 1967 (Med Biol Eng 5:271–293), of cerebrospinal fluid of Baumann et al. 1997 (IEEE TBME
+    /// 44:220–223); skull 25 times less conductive than the brain after Lai et al. 2005 (Clin Neurophysiol 116:456–465).
     pub fn standard() -> Self {
-        Self { specs: super::heads()[0].shells.clone() }
+        let shell = |tissue: &str, radius: f64, conductivity| ShellSpec {
+            tissue: tissue.into(),
+            ratio: radius / 88.0,
+            conductivity,
+        };
+        Self {
+            specs: vec![
+                shell("brain", 79.0, 0.33),
+                shell("cerebrospinal fluid", 81.0, 1.79),
+                shell("skull", 85.0, 0.0132),
+                shell("scalp", 88.0, 0.33),
+            ],
+        }
     }
 
     /// The shells as stated, innermost first.

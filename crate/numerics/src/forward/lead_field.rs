@@ -1,8 +1,8 @@
 use super::potential::{Potential, Terms};
 use super::{Images, MAX_ECCENTRICITY, Series};
-use crate::head::Shells;
 use crate::math::Vec3;
 use crate::math::lanes::{Lanes, WIDTH, blocks};
+use crate::shells::Shells;
 use ndarray::{Array2, Axis};
 
 /// The lead field of a set of electrodes on a layered sphere.
@@ -193,7 +193,7 @@ pub(crate) fn along(block: &Block, vector: Vec3) -> Lanes {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::head::ShellSpec;
+    use crate::shells::ShellSpec;
 
     fn directions() -> Vec<Vec3> {
         (0..50)
