@@ -537,7 +537,9 @@ mod tests {
         assert_eq!(delimiter("Fz 1,5 2,5\nCz 0,5 -2,5"), Some(Delimiter::Blanks));
         assert_eq!(delimiter("1,5;2,5\n3,5;4,5"), Some(Delimiter::Semicolon));
         assert_eq!(delimiter("Fz, 1.5\nCz, 2.5"), Some(Delimiter::Comma));
-        assert_eq!(delimiter("1,2\n3,4"), Some(Delimiter::Comma));
+        // A column of values, and one whose rows are counted.
+        assert_eq!(delimiter("1,2\n3,4"), Some(Delimiter::Blanks));
+        assert_eq!(delimiter("1,2\n2,4\n3,1"), Some(Delimiter::Comma));
     }
 
     #[test]
