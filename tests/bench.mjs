@@ -1,15 +1,8 @@
-// Fits timed through the module, as a script would: start, one map, a decomposition, thousands of maps.
-import { performance } from "node:perf_hooks";
-import { pathToFileURL } from "node:url";
+// Fits timed through the module, as a script would, in Node and in a browser: start, one map, a decomposition, thousands
+// of maps, long tables.
 
-const dist = process.env.INWARD_DIST ?? new URL("../target/dist", import.meta.url).pathname;
 const seconds = (since) => (performance.now() - since) / 1000;
-
-let start = performance.now();
-const { openEngine } = await import(pathToFileURL(`${dist}/engine/inward.mjs`).href);
-const engine = await openEngine();
-engine.program();
-console.log(`start: ${(1000 * seconds(start)).toFixed(0)} ms`);
+const ms = (seconds) => `${(1000 * seconds).toFixed(0)} ms`;
 
 /** Chance from a seed (a linear congruence is enough here), normal by the sum of twelve. */
 let state = 1n;
@@ -40,14 +33,42 @@ function map(positions) {
 
 const table = (columns, labels) => labels.map((label, i) => [label, ...columns.map((column) => column[i].toPrecision(7))].join("\t")).join("\n");
 
-for (const [electrodes, count] of [[32, 2000], [71, 71], [71, 2000], [128, 2000], [256, 1000]]) {
+/** A table of electrodes and one of maps over them. */
+function tables(electrodes, count) {
   const positions = spread(electrodes);
   const labels = positions.map((_, k) => `E${k + 1}`);
-  const request = {
-    electrodes: positions.map((p, k) => [labels[k], ...p].join("\t")).join("\n"),
-    maps: table(Array.from({ length: count }, () => map(positions)), labels),
+  return {
+    labels,
+    request: {
+      electrodes: positions.map((p, k) => [labels[k], ...p].join("\t")).join("\n"),
+      maps: table(Array.from({ length: count }, () => map(positions)), labels),
+    },
   };
-  start = performance.now();
+}
+
+/** The shortest of several runs, in seconds. */
+function shortest(work) {
+  const times = Array.from({ length: 5 }, () => {
+    const start = performance.now();
+    work();
+    return seconds(start);
+  });
+  return Math.min(...times);
+}
+
+/** Opening tables, and how much of it is reading: what is left when the same tables, already read, are opened for another head. */
+function reading(engine, electrodes, count) {
+  const { request } = tables(electrodes, count);
+  const study = engine.open(request);
+  const opened = shortest(() => engine.open(request).close());
+  const prepared = shortest(() => study.with({ head: { radius_mm: 90 } }).close());
+  study.close();
+  return `${count} × ${electrodes} text (${(request.maps.length / 1e6).toFixed(1)} MB): open ${ms(opened)}, of it reading ${ms(opened - prepared)}`;
+}
+
+function fits(engine, electrodes, count) {
+  const { request } = tables(electrodes, count);
+  let start = performance.now();
   const study = engine.open(request);
   const opened = seconds(start);
   start = performance.now();
@@ -57,21 +78,16 @@ for (const [electrodes, count] of [[32, 2000], [71, 71], [71, 2000], [128, 2000]
   start = performance.now();
   engine.analyse(request);
   const analysed = seconds(start);
-  console.log(
-    `${electrodes} electrodes, ${count} maps: open ${(1000 * opened).toFixed(0)} ms, ` +
-      `one by one ${((1e6 * fitted) / count).toFixed(0)} µs a fit (${(count / fitted).toFixed(0)} a second), ` +
-      `at once ${((1e6 * analysed) / count).toFixed(0)} µs with opening`,
+  return (
+    `${electrodes} electrodes, ${count} maps: open ${ms(opened)}, ` +
+    `one by one ${((1e6 * fitted) / count).toFixed(0)} µs a fit (${(count / fitted).toFixed(0)} a second), ` +
+    `at once ${((1e6 * analysed) / count).toFixed(0)} µs with opening`
   );
 }
 
-// What a click on an electrode waits for: the table read once, one electrode less, a new fit, sheet and picture.
-{
-  const positions = spread(71);
-  const labels = positions.map((_, k) => `E${k + 1}`);
-  const request = {
-    electrodes: positions.map((p, k) => [labels[k], ...p].join("\t")).join("\n"),
-    maps: table(Array.from({ length: 71 }, () => map(positions)), labels),
-  };
+/** What a click on an electrode waits for: the table read once, one electrode less, a new fit, sheet and picture. */
+function leavingOut(engine) {
+  const { request, labels } = tables(71, 71);
   const study = engine.open(request);
   study.sheet(0);
   const times = labels.map((label) => {
@@ -81,7 +97,33 @@ for (const [electrodes, count] of [[32, 2000], [71, 71], [71, 2000], [128, 2000]
     other.close();
     return performance.now() - start;
   });
+  study.close();
   times.sort((a, b) => a - b);
   const at = (share) => times[Math.floor(share * (times.length - 1))].toFixed(1);
-  console.log(`leave one of 71 electrodes out: new fit, sheet and picture ${at(0.5)} ms (median), ${at(0.9)} ms (9 of 10), ${at(1)} ms at most`);
+  return `leave one of 71 electrodes out: new fit, sheet and picture ${at(0.5)} ms (median), ${at(0.9)} ms (9 of 10), ${at(1)} ms at most`;
+}
+
+/** Runs it all; every line is told when it is known. */
+export async function bench(openEngine, tell) {
+  const start = performance.now();
+  const engine = await openEngine();
+  engine.program();
+  tell(`start: ${ms(seconds(start))}`);
+  const works = [
+    ...[[32, 2000], [71, 71], [71, 2000], [128, 2000], [256, 1000]].map((sizes) => () => fits(engine, ...sizes)),
+    ...[[256, 1], [512, 512]].map((sizes) => () => reading(engine, ...sizes)),
+    () => leavingOut(engine),
+  ];
+  for (const work of works) {
+    // What waits for this thread is let through in between.
+    await new Promise((resume) => setTimeout(resume));
+    tell(work());
+  }
+}
+
+if (typeof process !== "undefined") {
+  const { pathToFileURL } = await import("node:url");
+  const dist = process.env.INWARD_DIST ?? new URL("../target/dist", import.meta.url).pathname;
+  const { openEngine } = await import(pathToFileURL(`${dist}/engine/inward.mjs`).href);
+  await bench(openEngine, console.log);
 }
