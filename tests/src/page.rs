@@ -308,6 +308,19 @@ impl Page {
         })
     }
 
+    /// The report of an answer once something holds of it.
+    pub fn report_when(&self, what: &str, holds: impl Fn(&Value) -> bool) -> Value {
+        let mut report = Value::Null;
+        self.until(what, |page| {
+            if page.state() != "answered" {
+                return false;
+            }
+            report = page.report();
+            holds(&report)
+        });
+        report
+    }
+
     fn downloaded(&self, ask: impl Fn()) -> Value {
         let file = self.session.downloads().join("inward-report.json");
         let _ = std::fs::remove_file(&file);

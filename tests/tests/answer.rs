@@ -25,19 +25,6 @@ fn button(name: &str) -> String {
     format!("#empty [data-example='{name}']")
 }
 
-/// The report once something holds of it.
-fn report_when(page: &Page, what: &str, holds: impl Fn(&Value) -> bool) -> Value {
-    let mut report = Value::Null;
-    page.until(what, |page| {
-        if page.state() != "answered" {
-            return false;
-        }
-        report = page.report();
-        holds(&report)
-    });
-    report
-}
-
 fn examples() -> Value {
     serde_json::from_str(&inward_tests::example("examples.json")).unwrap()
 }
@@ -357,11 +344,11 @@ fn unit_sign_and_strength(browser: Browser) {
     assert!(page.text("#scale-high").contains("µV"));
     unfold(&page);
     page.click("#unit input[value=V]");
-    let volt = report_when(&page, "volt", |report| (strength(report) / strength(&micro) / 1e6 - 1.0).abs() < 1e-9);
+    let volt = page.report_when("volt", |report| (strength(report) / strength(&micro) / 1e6 - 1.0).abs() < 1e-9);
     assert_eq!(dipole(&volt)["position_mm"], dipole(&micro)["position_mm"]);
     unfold(&page);
     page.click("#unit input[value=relative]");
-    let first = report_when(&page, "relative", |report| dipole(report)["strength_unit"] == "relative");
+    let first = page.report_when("relative", |report| dipole(report)["strength_unit"] == "relative");
     assert_eq!(strength(&first), strength(&micro), "the same figure without a unit");
     assert_eq!(dipole(&first)["strength_comparable"], false);
     assert!(page.text("#numbers").contains("not comparable"), "{}", page.text("#numbers"));

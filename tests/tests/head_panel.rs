@@ -14,19 +14,6 @@ fn shells(report: &Value) -> Vec<(String, f64, f64)> {
     report["head"]["shells"].as_array().unwrap().iter().map(of).collect()
 }
 
-/// The report once something holds of it.
-fn report_when(page: &Page, what: &str, holds: impl Fn(&Value) -> bool) -> Value {
-    let mut report = Value::Null;
-    page.until(what, |page| {
-        if page.state() != "answered" {
-            return false;
-        }
-        report = page.report();
-        holds(&report)
-    });
-    report
-}
-
 /// A page with an example, its head panel open and its titles and ids in order.
 fn with_head(browser: Browser) -> (Page, Value) {
     let page = Page::open(browser);
@@ -79,14 +66,14 @@ fn published_heads_are_chosen_and_left_again(browser: Browser) {
     let mut answers = vec![number(&before["maps"][0]["dipole"]["eccentricity"])];
     for name in names.iter().filter(|name| **name != standard) {
         page.click(&format!("input[name=head][value='{name}']"));
-        let report = report_when(&page, name, |report| report["head"]["name"] == *name);
+        let report = page.report_when(name, |report| report["head"]["name"] == *name);
         assert_ne!(shells(&report), shells(&before), "{name}");
         assert_eq!(report["head"]["radius_mm"], before["head"]["radius_mm"], "{name}: the electrodes have not moved");
         answers.push(number(&report["maps"][0]["dipole"]["eccentricity"]));
     }
     assert!(answers.iter().any(|e| (e - answers[0]).abs() > 0.005), "other heads, other depths: {answers:?}");
     page.click(&format!("input[name=head][value='{standard}']"));
-    let back = report_when(&page, "the first head", |report| report["head"]["name"] == standard);
+    let back = page.report_when("the first head", |report| report["head"]["name"] == standard);
     assert_eq!(back["maps"], before["maps"]);
     assert_eq!(back["head"], before["head"]);
 }
@@ -105,7 +92,7 @@ fn a_head_is_edited_and_taken_back(browser: Browser) {
         page.fill(&format!("#{id}"), text);
     };
     fill("0.004");
-    let edited = report_when(&page, "another skull", |report| (shells(report)[skull].2 - 0.004).abs() < 1e-12);
+    let edited = page.report_when("another skull", |report| (shells(report)[skull].2 - 0.004).abs() < 1e-12);
     assert_eq!(edited["head"]["name"], Value::Null);
     assert!(page.exists("input[name=head][value=edited]:checked"));
     assert_ne!(edited["maps"][0]["dipole"]["position_mm"], before["maps"][0]["dipole"]["position_mm"]);
@@ -123,19 +110,19 @@ fn a_head_is_edited_and_taken_back(browser: Browser) {
     assert_eq!(page.accessibility_findings(), none, "a refused head");
 
     page.click("#failure-restore");
-    let restored = report_when(&page, "the answer's head", |report| report["maps"] == edited["maps"]);
+    let restored = page.report_when("the answer's head", |report| report["maps"] == edited["maps"]);
     assert!(!page.visible("#failure"));
     assert_eq!(shells(&restored), shells(&edited));
     page.click("#head-standard");
-    let back = report_when(&page, "the standard head", |report| report["head"]["name"] == before["head"]["name"]);
+    let back = page.report_when("the standard head", |report| report["head"]["name"] == before["head"]["name"]);
     assert_eq!(back["maps"], before["maps"]);
 
     let radius = number(&before["head"]["radius_mm"]);
     page.fill("#head-radius", "95");
-    let larger = report_when(&page, "a larger head", |report| report["head"]["radius_mm"] == 95.0);
+    let larger = page.report_when("a larger head", |report| report["head"]["radius_mm"] == 95.0);
     assert!(radius < 95.0 && larger["head"]["name"] == before["head"]["name"], "its shells are the same");
     page.click("#head-fitted");
-    let back = report_when(&page, "the fitted sphere", |report| report["head"]["radius_mm"] == radius);
+    let back = page.report_when("the fitted sphere", |report| report["head"]["radius_mm"] == radius);
     assert_eq!(back["maps"], before["maps"]);
 }
 

@@ -125,6 +125,11 @@ pub(super) fn words(bytes: &[u8]) -> String {
     core::str::from_utf8(bytes).map_or_else(|_| bytes.iter().copied().map(char::from).collect(), str::to_owned)
 }
 
+/// The error of a file that holds no table, with the key of what it is.
+pub(super) fn no_table(what: &'static str) -> Error {
+    Finding::new(Code::InputNoTable).with("what", what).into()
+}
+
 #[cfg(test)]
 #[allow(clippy::indexing_slicing, clippy::unwrap_used)]
 mod tests {

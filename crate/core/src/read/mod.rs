@@ -86,7 +86,7 @@ fn read_one(bytes: &[u8], how: Reading) -> Result<Content, Error> {
             let (parts, notes) = mat::read(bytes)?;
             Ok(Content { notes, ..Content::of(Format::Mat, parts) })
         }
-        Some(_) => Err(signature::no_table("archive")),
+        Some(_) => Err(bytes::no_table("archive")),
     }
 }
 

@@ -1,5 +1,6 @@
 //! Formats told by the first bytes, never by the name.
 
+use super::bytes::no_table;
 use super::content::Format;
 use super::{mat, npy, zip};
 use crate::finding::{Code, Error, Finding};
@@ -57,11 +58,6 @@ pub fn container(file: &[u8]) -> Result<Option<Format>, Error> {
         None if is_binary(file) => Err(no_table("binary")),
         None => Ok(None),
     }
-}
-
-/// The error of a file that holds no table, with the key of what it is.
-pub(super) fn no_table(what: &'static str) -> Error {
-    Finding::new(Code::InputNoTable).with("what", what).into()
 }
 
 /// The header of a recording says its own length, 256 bytes and 256 for each signal, and the number of signals.

@@ -2,8 +2,7 @@
 //! stored or deflated.
 
 use super::MOST_BYTES;
-use super::bytes::{Endian, byte, damaged, shown, truncated, words};
-use super::signature::no_table;
+use super::bytes::{Endian, byte, damaged, no_table, shown, truncated, words};
 use crate::finding::{Code, Error, Finding};
 use miniz_oxide::inflate::{TINFLStatus, decompress_to_vec_with_limit};
 
