@@ -48,7 +48,7 @@ pub fn page(template: &str, parts: &Parts) -> Result<String> {
             left.remove(place);
             page.extend(filled.iter().filter(|(one, _)| *one == name).map(|(_, text)| text.as_str()));
         } else {
-            page += line;
+            page += line.trim_start();
         }
         page.push('\n');
     }
