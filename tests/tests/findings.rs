@@ -30,6 +30,10 @@ fn plain() -> Settings {
     Settings::default()
 }
 
+fn unmixing() -> Settings {
+    Settings { maps_are: Some(MapsAre::Unmixing), ..plain() }
+}
+
 fn head(change: impl FnOnce(&mut HeadSettings)) -> Settings {
     let mut head = HeadSettings::default();
     change(&mut head);
@@ -229,7 +233,6 @@ fn errors() -> Vec<(&'static str, ErrorReport)> {
     let (eb, mb) = (e.as_bytes(), m.as_bytes());
     let matrix = bare(&m);
     let short: String = matrix.lines().take(30).map(|line| format!("{line}\n")).collect();
-    let unmixing = || Settings { maps_are: Some(MapsAre::Unmixing), ..plain() };
     let gaps = with_line(&m, 4, |line| format!("{}\tn/a", line.rsplit_once('\t').unwrap().0));
     let late = Settings {
         times: Some(Times { start: 0.0, step: 2.0, unit: Default::default() }),
@@ -319,6 +322,16 @@ fn errors_name_input_line_column_label_and_map() {
     assert_eq!(error(Some(&e), &spaced, plain()).place.unwrap().line, Some(6));
     let duplicate = error(Some(&e), &with_line(&m, 9, |line| line.replacen("AF8", "AF3", 1)), plain());
     assert!(duplicate.message.contains('4') && duplicate.message.contains('9'), "{}", duplicate.message);
+    // A map is named as its table has it, whatever number scripts know it by.
+    let activation = error(Some(&e), &m, Settings { activation_sd: vec![None, Some(-1.0)], ..plain() });
+    assert!(activation.message.contains("“engine room”"), "{}", activation.message);
+    // What a square matrix was taken for is said as it was done.
+    let square: String =
+        (0..70).map(|row| (0..70).map(|k| format!("{} ", (row * 7 + k * k) % 13)).collect::<String>() + "\n").collect();
+    for (settings, taken) in [(plain(), "each row"), (unmixing(), "each column")] {
+        let report = files(&[("m", square.as_bytes()), ("e", e.as_bytes())], settings).unwrap();
+        assert!(report.notes.iter().any(|note| note.message.contains(taken)), "{taken}: {:?}", report.notes);
+    }
 }
 
 #[test]
@@ -463,7 +476,6 @@ fn every_note_is_given_when_it_applies_and_not_otherwise() {
         columns_are: Some(ColumnsAre::TimePoints),
         ..plain()
     };
-    let unmixing = Settings { maps_are: Some(MapsAre::Unmixing), ..plain() };
     let sampling: &[u8] = b"{\"SamplingFrequency\": 256, \"note\": \"calm\"}";
     let several = format!(
         "{{\"labels\": {:?}, \"maps\": [{}], \"other\": [[1, 2], [3, 4]]}}",
@@ -481,8 +493,8 @@ fn every_note_is_given_when_it_applies_and_not_otherwise() {
         ("angles-read", "info", vec![("m", mb), ("e", angles.as_bytes())], plain()),
         ("file-unused", "warning", vec![("m", mb), ("e", eb), ("s", sampling)], plain()),
         ("part-unused", "info", vec![("m", several.as_bytes()), ("e", eb)], plain()),
-        ("unmixing-inverted", "info", vec![("m", mb), ("e", eb)], unmixing.clone()),
-        ("sphering-absent", "warning", vec![("m", mb), ("e", eb)], unmixing),
+        ("unmixing-inverted", "info", vec![("m", mb), ("e", eb)], unmixing()),
+        ("sphering-absent", "warning", vec![("m", mb), ("e", eb)], unmixing()),
         ("baseline-subtracted", "info", vec![("m", mb), ("e", eb)], moments),
     ];
     for (code, severity, given, settings) in of_files {

@@ -4,6 +4,7 @@ use inward_core::electrode::{Label, nearest_site, standard_position};
 use inward_core::understand::Kind;
 use inward_core::{MapReport, Request, analyse, kind};
 use inward_tests::{Draw, Electrodes, Mixture, PlainSeries, data, example};
+use serde_json::json;
 
 fn headless(table: &str) -> String {
     table.split_once('\n').unwrap().1.into()
@@ -142,4 +143,51 @@ fn tables_hold_what_a_reader_sees_in_them() {
         let request = Request { maps: text.as_bytes(), ..Request::default() };
         assert!(analyse(&request).is_err());
     }
+}
+
+/// Positions given apart replace those that stand beside the values, in one table or in another part of the file, and the
+/// report says so.
+#[test]
+fn positions_given_apart_replace_those_beside_the_values() {
+    let (electrodes, maps) = (example("watch_electrodes.tsv"), example("watch_maps.tsv"));
+    let rows =
+        |table: &str| table.lines().map(|line| line.split('\t').map(String::from).collect()).collect::<Vec<Vec<_>>>();
+    let (places, values) = (rows(&electrodes), rows(&maps));
+    let beside = |from: usize, label: &str| -> String {
+        let row = |row: usize| {
+            // Other positions: every electrode where the next one is.
+            let place = places.get(row + usize::from(row > 0)).unwrap_or(&places[1]);
+            format!("{}\t{}\t{}\n", places[row][0].replace("label", label), place[1..].join("\t"), values[row][1])
+        };
+        (from..places.len()).map(row).collect()
+    };
+    let positions = json!(places[1..].iter().skip(1).chain([&places[1]]).map(|row| numbers(row)).collect::<Vec<_>>());
+    let labels = json!(places[1..].iter().map(|row| &row[0]).collect::<Vec<_>>());
+    let column = json!(values[1..].iter().map(|row| [row[1].parse::<f64>().unwrap()]).collect::<Vec<_>>());
+    let parts = json!({ "labels": labels, "positions": positions, "maps": column }).to_string();
+    let only = |files: &[(&str, &[u8])]| {
+        let report = analyse(&Request { files: files.to_vec(), ..Request::default() })
+            .unwrap_or_else(|error| panic!("{error:?}"));
+        let MapReport::Fitted(map) = &report.maps[0] else { panic!("{report:?}") };
+        let noted =
+            report.notes.iter().any(|note| note.code.as_str() == "part-unused" && note.message.contains("both"));
+        (map.dipole.position_mm, report.maps.len(), noted)
+    };
+    let one: String = values.iter().map(|row| format!("{}\t{}\n", row[0], row[1])).collect();
+    let expected = only(&[("one", one.as_bytes()), ("apart", electrodes.as_bytes())]);
+    assert_eq!((expected.1, expected.2), (1, false));
+    for both in [beside(0, "label"), beside(1, "label"), parts] {
+        let own = only(&[("both", both.as_bytes())]);
+        assert!((own.0 - expected.0).norm() > 5.0 && !own.2, "positions of its own: {own:?}");
+        for files in [
+            [("both", both.as_bytes()), ("apart", electrodes.as_bytes())],
+            [("apart", electrodes.as_bytes()), ("both", both.as_bytes())],
+        ] {
+            assert_eq!(only(&files), (expected.0, 1, true), "{both}");
+        }
+    }
+}
+
+fn numbers(row: &[String]) -> Vec<f64> {
+    row[1..].iter().map(|number| number.parse().unwrap()).collect()
 }

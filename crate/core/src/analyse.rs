@@ -105,7 +105,7 @@ impl Study {
     }
 
     fn prepared(tables: Arc<Tables>, settings: Settings, before: Option<&Self>) -> Result<Self, Error> {
-        settings.check(tables.understood.maps.names.len())?;
+        settings.check(&tables.understood.maps.names)?;
         if settings.laplacian == Some(true) {
             return Err(Finding::new(Code::MapLaplacian).at(Place::input("maps")).into());
         }

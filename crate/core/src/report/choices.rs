@@ -138,15 +138,15 @@ pub fn sentence(choice: &Choice) -> String {
             format!(", as the labels tell: {}", listed(labels))
         }
         (Some(Value::Text(by)), _) if by == "landmarks" => ", as the points at ears and nose tell".into(),
+        (Some(Value::Text(by)), _) if choice.setting == "columnsAre" => format!(", by {by}"),
         _ => String::new(),
     };
     let why = match (choice.from, choice.setting) {
         (Origin::Setting, _) => ", as you chose",
         (Origin::Declared, "encoding") => ", by the mark at its beginning",
         (Origin::Declared, _) => ", as a file says",
-        (Origin::Found, "columnsAre") => ", by their names",
         (Origin::Found, "units") => ", by the size of the head",
-        (Origin::Found, "axes") => &labels,
+        (Origin::Found, "axes" | "columnsAre") => &labels,
         (Origin::Assumed, "mirror") => ", although the labels contradict them",
         (Origin::Found, _) => "",
         (Origin::Assumed, _) => "; nothing in the files tells otherwise",

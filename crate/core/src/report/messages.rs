@@ -188,7 +188,7 @@ pub fn message(finding: &Finding) -> String {
             ),
             None => format!("The positions fit no sphere; {} lies farthest from the rest.", value("label")),
         },
-        Code::MapsNone => "The table of maps holds no values.".into(),
+        Code::MapsNone => format!("The {input} holds no values."),
         Code::MapsTooMany => {
             format!("The table holds {} maps; at most {} are read.", value("found"), value("most"))
         }
@@ -200,8 +200,8 @@ pub fn message(finding: &Finding) -> String {
         Code::MapIndex => format!("There is no map {}; the table holds {}.", value("index"), value("count")),
         Code::PartPassedOver => format!("Passed over in the {input}: {} ({}).", value("labels"), value("why")),
         Code::ActivationSdInvalid => format!(
-            "The standard deviation given for the activation of map {} is not a number from 1e-100 to 1e100.",
-            value("index")
+            "The standard deviation given for the activation of the map “{}” is not a number from 1e-100 to 1e100.",
+            value("map")
         ),
         Code::AxesAssumed => {
             "Axes were assumed: x to the right, y to the front, z up. Neither labels nor landmarks tell them.".into()
@@ -286,6 +286,9 @@ pub fn message(finding: &Finding) -> String {
         Code::ColumnsPassedOver => {
             format!("Columns of the {input} without values were passed over: {}.", value("columns"))
         }
+        Code::PartUnused if value("role") == "positions" => {
+            format!("The positions in the {input} were not needed, as others were given apart.")
+        }
         Code::PartUnused => match value("part").as_str() {
             "" => format!("The {input} was not needed."),
             part => format!("The part “{part}” of the {input} was not needed."),
@@ -302,9 +305,10 @@ pub fn message(finding: &Finding) -> String {
             value("count")
         ),
         Code::OrientationAssumed => format!(
-            "The {input} is square, {} by {}: each row was taken as an electrode.",
+            "The {input} is square, {} by {}: each {} was taken as an electrode.",
             value("rows"),
-            value("rows")
+            value("rows"),
+            value("electrode")
         ),
         Code::UnmixingInverted => format!(
             "The maps are the pseudo-inverse of the unmixing matrix: {} maps of {} independent components.",
@@ -444,7 +448,7 @@ pub fn hint(code: Code) -> &'static str {
         Code::MapIncomplete => "Fill in the value, or leave the electrode out.",
         Code::MapIndex => "Count maps from 0.",
         Code::ActivationSdInvalid => {
-            "Give a positive number in the unit of the activation, or leave it open; maps are counted from 0."
+            "Give a positive number in the unit of the activation, or leave it open; a list has one for each map, in their order."
         }
         _ => "",
     }

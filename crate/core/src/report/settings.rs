@@ -92,15 +92,18 @@ impl Settings {
     ///
     /// # Errors
     /// `map-index`, `activation-sd-invalid`.
-    pub fn check(&self, maps: usize) -> Result<(), Error> {
+    pub fn check(&self, maps: &[String]) -> Result<(), Error> {
         let finding = |code, index: usize| Finding::new(code).at(Place::input("settings")).with("index", index);
         let named = self.flip.iter().copied().chain(self.activation_sd.len().checked_sub(1));
-        if let Some(index) = named.into_iter().find(|index| *index >= maps) {
-            return Err(finding(Code::MapIndex, index).with("count", maps).into());
+        if let Some(index) = named.into_iter().find(|index| *index >= maps.len()) {
+            return Err(finding(Code::MapIndex, index).with("count", maps.len()).into());
         }
         let invalid = |sd: &Option<f64>| sd.is_some_and(|sd| !SIZES.contains(&sd));
         match self.activation_sd.iter().position(invalid) {
-            Some(index) => Err(finding(Code::ActivationSdInvalid, index).into()),
+            Some(index) => {
+                let name = maps.get(index).map(String::as_str).unwrap_or_default();
+                Err(finding(Code::ActivationSdInvalid, index).with("map", name).into())
+            }
             None => Ok(()),
         }
     }

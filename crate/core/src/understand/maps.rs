@@ -126,7 +126,12 @@ pub(super) fn read_maps(
     );
     if from == Origin::Assumed && !labelled {
         let place = found.place(INPUT, grid);
-        found.notes.push(Finding::new(Code::OrientationAssumed).at(place).with("rows", grid.height()));
+        found.notes.push(
+            Finding::new(Code::OrientationAssumed)
+                .at(place)
+                .with("rows", grid.height())
+                .with("electrode", if in_rows { "row" } else { "column" }),
+        );
     }
     if let Some(column) = label.filter(|_| in_rows) {
         let wished = wishes.files.get(&file).is_some_and(|wish| wish.label.is_some());

@@ -270,6 +270,8 @@ struct Chosen {
     channels: Option<usize>,
     sphering: Option<usize>,
     times: Option<usize>,
+    /// The table of maps has positions of its own, which a table of electrodes replaces.
+    replaced: bool,
 }
 
 impl Chosen {
@@ -284,10 +286,12 @@ impl Chosen {
             let numbered = grids.iter().enumerate();
             numbered.filter(|(_, (_, role))| roles.contains(role)).map(|(index, _)| index).collect()
         };
-        // Values beside positions are maps unless there are maps.
-        if !with(grids, &[Role::Maps]).is_empty() {
+        // Values beside positions are maps unless there are maps, and the positions count unless others are given apart.
+        let both = with(grids, &[Role::ElectrodesAndMaps]);
+        let replaced = with(grids, &[Role::Maps]).is_empty() && !with(grids, &[Role::Electrodes]).is_empty();
+        if replaced || !with(grids, &[Role::Maps]).is_empty() {
             for (_, role) in grids.iter_mut().filter(|(_, role)| *role == Role::ElectrodesAndMaps) {
-                *role = Role::Electrodes;
+                *role = if replaced { Role::Maps } else { Role::Electrodes };
             }
         }
         let counts: Vec<usize> = with(grids, &[Role::Electrodes, Role::ElectrodesAndMaps, Role::Labels])
@@ -314,12 +318,23 @@ impl Chosen {
             }
             return Err(finding.into());
         };
-        let candidates = with(grids, &[Role::Electrodes, Role::ElectrodesAndMaps]);
+        let replaced = replaced && both.contains(&maps);
+        if let Some((grid, _)) = grids.get(maps).filter(|_| replaced) {
+            found.notes.push(
+                Finding::new(Code::PartUnused).at(found.place("file", grid)).with("role", "positions").with("part", ""),
+            );
+        }
+        let mut candidates = with(grids, &[Role::Electrodes, Role::ElectrodesAndMaps]);
+        // Positions in a file of their own replace those in the file of the maps.
+        let file_of = |index: usize| grids.get(index).map(|(grid, _)| grid.file);
+        if candidates.iter().any(|&index| file_of(index) != file_of(maps)) {
+            candidates.retain(|&index| file_of(index) != file_of(maps));
+        }
         let electrodes = one_of(&candidates, grids, "electrodes", |_| 0, found)?;
         let candidates = with(grids, &[Role::Channels]);
         let channels = one_of(&candidates, grids, "channels", |_| 0, found)?;
         let candidates = with(grids, &[Role::Sphering]);
-        let sphering = one_of(&candidates, grids, "sphering", |_| 0, found)?.filter(|_| unmixing);
+        let sphering = one_of(&candidates, grids, "sphering", |_| 0, found)?;
         let times = with(grids, &[Role::Times]).first().copied();
         let labels = with(grids, &[Role::Labels]);
         let kept: Vec<usize> = [Some(maps), electrodes, channels, sphering, times]
@@ -328,17 +343,22 @@ impl Chosen {
             .chain(labels.iter().copied())
             .collect();
         for (index, (grid, role)) in grids.iter_mut().enumerate() {
-            if !kept.contains(&index) {
+            let idle = sphering == Some(index) && !unmixing;
+            if !kept.contains(&index) || idle {
                 let told = wishes.files.get(&found.file_name(grid)).is_some_and(|wish| wish.role == Some(Role::Unused));
                 if *role != Role::Unused && !told {
                     let mut unused = Finding::new(Code::PartUnused).at(found.place("file", grid));
                     unused = unused.with("role", role.name());
                     found.notes.push(unused.with("part", grid.part.unwrap_or_default()));
                 }
-                *role = Role::Unused;
+                // A sphering matrix waits for its unmixing matrix.
+                if !idle {
+                    *role = Role::Unused;
+                }
             }
         }
-        Ok(Self { maps, electrodes, labels, channels, sphering, times })
+        let sphering = sphering.filter(|_| unmixing);
+        Ok(Self { maps, electrodes, labels, channels, sphering, times, replaced })
     }
 
     fn read(
@@ -401,7 +421,9 @@ impl Chosen {
                 .unwrap_or_default()
         } else {
             // Positions that other ones replace.
-            Some(maps_grid).filter(|grid| !grid.is_numeric()).and_then(positions::named).unwrap_or_default()
+            let unnamed = || positions::unnamed(maps_grid, maps_grid.label_column()).filter(|_| self.replaced);
+            let named = positions::named(maps_grid).filter(|_| !maps_grid.is_numeric());
+            named.or_else(|| unnamed().map(Vec::from)).unwrap_or_default()
         };
         let numbered = maps_grid.numbered().filter(|_| wordless && electrodes.is_some());
         let read = maps::read_maps(maps_grid, &beside, &known, numbered, wishes, &mut found)?;

@@ -277,7 +277,7 @@ fn bare(name: &str) -> String {
 }
 
 /// The first three columns of numbers that do not count the rows, where there are three.
-fn unnamed(grid: &Grid<'_>, label: Option<usize>) -> Option<[usize; 3]> {
+pub(super) fn unnamed(grid: &Grid<'_>, label: Option<usize>) -> Option<[usize; 3]> {
     let mut others = (0..grid.width())
         .filter(|&column| Some(column) != label && !grid.numbers_rows(column, label) && grid.has_numbers(column));
     Some([others.next()?, others.next()?, others.next()?])

@@ -1,5 +1,5 @@
 use super::grid::Grid;
-use super::{ColumnsAre, Found, TimeUnit, Wishes};
+use super::{ColumnsAre, Found, MapsAre, TimeUnit, Wishes};
 use crate::finding::{Choice, Code, Error, Finding, Origin};
 use crate::map::Maps;
 use serde::Serialize;
@@ -30,17 +30,19 @@ pub(super) fn sequence(
 ) -> Result<(ColumnsAre, Option<Moments>), Error> {
     let listed = times.and_then(|times| listed(times, maps.names.len()));
     let named = named_times(&maps.names);
-    let (are, from) = match wishes.columns_are {
-        Some(are) => (are, Origin::Setting),
-        None if wishes.times.is_some() => (ColumnsAre::TimePoints, Origin::Setting),
-        None if wishes.maps_are == Some(super::MapsAre::Unmixing) => (ColumnsAre::Components, Origin::Setting),
-        None if named.is_some() || listed.is_some() => (ColumnsAre::TimePoints, Origin::Found),
-        None => by_names(&maps.names),
+    let ((are, from), by) = match wishes.columns_are {
+        Some(are) => ((are, Origin::Setting), ""),
+        None if wishes.times.is_some() => ((ColumnsAre::TimePoints, Origin::Found), "their times"),
+        None if wishes.maps_are == Some(MapsAre::Unmixing) => {
+            ((ColumnsAre::Components, Origin::Found), "what the table holds")
+        }
+        None if named.is_some() => ((ColumnsAre::TimePoints, Origin::Found), "their names"),
+        None if listed.is_some() => ((ColumnsAre::TimePoints, Origin::Found), "a list of times"),
+        None => (by_names(&maps.names), "their names"),
     };
     let file = found.file_name(grid);
-    found
-        .choices
-        .push(Choice::new("columnsAre", from, are.name()).about(&file).options(ColumnsAre::ALL.map(ColumnsAre::name)));
+    let choice = Choice::new("columnsAre", from, are.name()).about(&file).with("by", by);
+    found.choices.push(choice.options(ColumnsAre::ALL.map(ColumnsAre::name)));
     if are != ColumnsAre::TimePoints {
         return Ok((are, None));
     }
