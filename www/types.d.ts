@@ -429,6 +429,8 @@ interface Input {
   content: InwardContent;
   /** What it is by its content; none where it was not looked at or cannot be read. */
   role?: FileRole;
+  /** Why it cannot be read. */
+  fault?: Fault;
 }
 
 type InputKind = "electrodes" | "maps";
@@ -457,6 +459,13 @@ interface Step {
   setAside: SessionState["setAside"];
   /** What the change was of. */
   what: string[];
+}
+
+/** `sphering`: a matrix that took the place of an unmixing matrix, and may be its sphering matrix. */
+interface Said {
+  replaced: string[];
+  dropped: string[];
+  sphering?: Input;
 }
 
 type Phase = "loading" | "ready" | "busy" | "answered" | "failed";
@@ -493,7 +502,7 @@ interface SessionState {
   /** Changes that can be undone, the last one last. */
   past: Step[];
   /** Files that gave way with the last change, and settings that went with them. */
-  said: { replaced: string[]; dropped: string[] } | null;
+  said: Said | null;
   /** Files that came in and led to no answer, while those of the answer stay. */
   refused: { inputs: Inputs; settings: PageSettings } | null;
   heads: CatalogueHead[];

@@ -107,6 +107,9 @@ fn cards_tell_what_was_understood(page: &Page) {
     let whole = page.value("return [...document.querySelector('#set-mapsAre').options].map((option) => option.text)");
     assert_eq!(whole[2], "an unmixing matrix, whose pseudo-inverse holds the maps", "words of ours are not shortened");
     let report = page.download_report();
+    assert!(!page.text("#cards").contains("Its fields are divided by tabs."), "what is seldom wrong is folded away");
+    page.click("[data-file='watch_maps.tsv'] summary");
+    page.click("[data-file='watch_electrodes.tsv'] summary");
     let shown = page.text("#cards");
     for choice in report["understood"]["choices"].as_array().unwrap() {
         let sentence = choice["sentence"].as_str().unwrap();
@@ -224,6 +227,7 @@ fn a_spreadsheet_is_pasted(page: &Page) {
     page.until("the pasted map", |page| {
         answered(page) && page.texts("#cards h3").iter().any(|title| title.contains("pasted maps"))
     });
+    page.click("[data-file='pasted maps'] summary");
     let card = page.text("[data-file='pasted maps']");
     assert!(card.contains("comma") && card.contains("tabs"), "{card}");
     let value = page.download_report()["maps"][0]["variance_explained"].as_f64().unwrap();

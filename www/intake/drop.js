@@ -4,18 +4,18 @@ import { inputOfFile } from "./files.js";
 
 /** @import { Session } from "../session/session.js" */
 
-/** @param {DataTransfer | null} transfer @returns {Promise<Input[]>} */
-async function inputsOfTransfer(transfer) {
+/** @param {DataTransfer | null} transfer @returns {(Input | Promise<Input>)[]} */
+function inputsOfTransfer(transfer) {
   if (transfer === null) return [];
   const text = transfer.getData("text/plain");
-  if (transfer.files.length > 0) return Promise.all([...transfer.files].map(inputOfFile));
+  if (transfer.files.length > 0) return [...transfer.files].map(inputOfFile);
   return text.trim() === "" ? [] : [{ name: "", content: text }];
 }
 
 /** @param {Session} session @param {DataTransfer | null} transfer */
 async function takeTransfer(session, transfer) {
   try {
-    await session.add(await inputsOfTransfer(transfer));
+    await session.add(inputsOfTransfer(transfer));
   } catch (error) {
     session.fail(error);
   }

@@ -1,6 +1,6 @@
 /** Files and pasted text become inputs. Bytes stay as they are; the engine decides on their encoding. */
 
-import { harmless } from "../text/figures.js";
+import { harmless, shortName } from "../text/figures.js";
 
 const SHOW_CHARACTERS = 1 << 18;
 /** The engine reads no more; a larger file need not be loaded to be refused. */
@@ -27,15 +27,16 @@ export function shownText({ content }) {
 
 /** @param {File} file @returns {Promise<Input>} */
 export async function inputOfFile(file) {
-  if (file.size > MOST_BYTES) throw fileFault("file-large", `${file.name}: ${file.size} bytes`);
+  const name = harmless(file.name);
+  if (file.size > MOST_BYTES) throw fileFault("file-large", name, `${file.size} bytes`);
   try {
-    return { name: harmless(file.name), content: new Uint8Array(await file.arrayBuffer()) };
+    return { name, content: new Uint8Array(await file.arrayBuffer()) };
   } catch (error) {
-    throw fileFault("file-unreadable", `${file.name}: ${error}`);
+    throw fileFault("file-unreadable", name, String(error));
   }
 }
 
-/** @param {string} code @param {string} details */
-function fileFault(code, details) {
-  return Object.assign(new Error(""), { code, details });
+/** @param {string} code @param {string} name @param {string} details */
+function fileFault(code, name, details) {
+  return Object.assign(new Error(""), { code, details, where: { file: shortName(name) } });
 }

@@ -36,11 +36,13 @@ const OF_FILE = ["role", "encoding", "delimiter", "decimal", "label"];
  * @param {string[]} names of all files
  * @returns {{ setting: string, path: string[], file: string | null }[]}
  */
-export function helpFor({ code, where }, names) {
+export function helpFor({ code, message, where }, names) {
   // An error of one file is helped by what is said about that file.
   const named = where?.file?.split("/")[0] ?? "";
-  const one = names.includes(named) && !["files-several", "maps-missing"].includes(code);
-  const files = one ? [where?.file ?? named] : names;
+  if (named !== "" && !names.includes(named)) return [];
+  const one = named !== "" && !["files-several", "maps-missing"].includes(code);
+  const some = names.filter((name) => code !== "files-several" || message.includes(name));
+  const files = one ? [where?.file ?? named] : some;
   return (HELP[code] ?? [])
     .filter((setting) => !COLUMNS.includes(setting) || where?.input !== "maps")
     .filter((setting) => setting !== "label" || where?.input !== "electrodes")

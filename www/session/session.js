@@ -135,11 +135,16 @@ export function makeSession() {
    * Files come in, each to its place; what cannot be read goes to the maps, where reading it says what is wrong.
    * @param {Input[]} given
    */
-  function takeIn(given) {
+  async function takeIn(given) {
     const before = store.read();
     const { inputs, replaced } = placedInputs(before.example === null ? before.inputs : NO_INPUTS, given);
     exchange(inputs, replaced);
-    ask(before);
+    const { said } = store.read();
+    const last = before.inputs.maps;
+    // Two matrices, one after the other: the second may belong to the first.
+    const offered = before.settings.mapsAre === "unmixing" && given.length === 1 && given[0] === inputs.maps;
+    if (said !== null && offered && last !== null) store.write({ said: { ...said, sphering: given[0] } });
+    await ask(before);
   }
 
   /**
@@ -302,19 +307,31 @@ export function makeSession() {
      */
     async recognised(input) {
       const engine = await started;
-      /** @type {FileRole | undefined} */
-      const role = await engine.ask({ kind: "roleOf", name: input.name, content: input.content }).catch(() => undefined);
-      return { ...input, role };
+      try {
+        return { ...input, role: await engine.ask({ kind: "roleOf", name: input.name, content: input.content }) };
+      } catch (fault) {
+        return { ...input, fault: /** @type {Fault} */ (fault) };
+      }
     },
 
     /**
      * Files in any order, told apart by their content. What was there for the same purpose gives way, and an invented
-     * map as a whole.
-     * @param {Input[]} given
+     * map as a whole. One that cannot be read does not keep the others out.
+     * @param {(Input | Promise<Input>)[]} given
      */
     async add(given) {
-      const inputs = await Promise.all(given.map((input) => this.recognised(input)));
-      if (inputs.length > 0) takeIn(inputs);
+      const taken = await Promise.allSettled(given.map(async (input) => this.recognised(await input)));
+      const inputs = taken.flatMap((one) => (one.status === "fulfilled" ? [one.value] : []));
+      const readable = inputs.filter(({ role }) => role !== undefined);
+      const spoilt = inputs.filter(({ role }) => role === undefined);
+      if (inputs.length > 0) await takeIn(readable.length > 0 ? readable : spoilt);
+      if (store.read().failure !== null) return;
+      const refused = taken.find((one) => one.status === "rejected");
+      const fault = refused === undefined ? spoilt[0]?.fault : refused.reason;
+      if (fault === undefined) return;
+      const { inputs: kept, settings } = store.read();
+      store.write({ refused: { inputs: kept, settings } });
+      fail(fault);
     },
 
     /** Puts a sphering matrix beside an unmixing matrix. @param {Input} input */
@@ -327,6 +344,14 @@ export function makeSession() {
       const path = ["files", file?.name ?? "", "role"];
       store.write({ settings: settingsWith(store.read().settings, path, "sphering") });
       ask(before);
+    },
+
+    /** What took the place of an unmixing matrix is its sphering matrix after all. */
+    takeAsSphering() {
+      const input = store.read().said?.sphering;
+      if (input === undefined) return;
+      this.undo();
+      this.addSphering(input);
     },
 
     /**

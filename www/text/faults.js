@@ -24,10 +24,10 @@ const PAGE_FAULTS = {
   },
   "file-unreadable": {
     message: "The browser could not read that file.",
-    hint: "It may have been moved, renamed or locked. Pick it again, or paste its content.",
+    hint: "It may have been moved, renamed or locked, or be a folder. Give the file itself, or paste its content.",
   },
   "file-large": {
-    message: "That file is larger than 64 MiB, the most that is read.",
+    message: "At most 64 MiB are read, and that file is larger.",
     hint: "Split the table, or leave out columns that are not needed.",
   },
   "page-error": {
@@ -40,7 +40,9 @@ const PAGE_FAULTS = {
 export function pageFault(fault) {
   if (fault.message !== "") return fault;
   const words = PAGE_FAULTS[fault.code] ?? PAGE_FAULTS["page-error"];
-  return { ...fault, ...words };
+  const file = fault.where?.file;
+  const message = file ? words.message.replace("that file", `the file “${file}”`) : words.message;
+  return { ...fault, ...words, message };
 }
 
 const PLACE_WORDS = /** @type {const} */ ({

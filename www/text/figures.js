@@ -44,6 +44,11 @@ export function enteredNumber(text) {
   return text.trim() === "" ? Number.NaN : Number(text.trim().replace(",", ".").replace(MINUS, "-"));
 }
 
+/** @param {number} time @param {string} unit */
+export function timeText(time, unit) {
+  return `${enteredText(time).replace("-", MINUS)}${NO_BREAK}${unit}`.trim();
+}
+
 /** A number as it stands in an entry field. @param {number} value */
 export function enteredText(value) {
   return String(Number(value.toPrecision(6)));

@@ -1,6 +1,6 @@
 /** Every sentence of the page, by code. */
 
-import { NO_BREAK, shortName } from "./figures.js";
+import { NO_BREAK, shortName, timeText } from "./figures.js";
 
 /** @type {Record<string, string>} */
 const WORDS = {
@@ -49,9 +49,11 @@ const WORDS = {
   others: "Further files",
   "others.hint": "Any number of files in any order, told apart by what is in them: maps, electrodes, coordinate system, channels, labels, sphering matrix.",
   "pick.several": "Pick files",
+  "pick.sphering": "Pick the sphering matrix",
   remove: "Remove",
   undo: "Undo",
   undone: "Undone",
+  "undo.sphering": "It is the sphering matrix of the former",
   automatic: "automatic",
 
   "state.loading": "Starting the engine",
@@ -70,6 +72,8 @@ const WORDS = {
   "choice.unfitted": "not fitted",
 
   answer: "Answer",
+  "answer.unchanged": "The answer in words is unchanged.",
+  "answer.assumed": "See what was understood, and change it",
   "maps.title": "Measured, one dipole, left over",
   "map.measured": "measured",
   "map.projected": "one dipole",
@@ -85,6 +89,7 @@ const WORDS = {
   "polarity.arbitrary": "arbitrary: an axis",
   "polarity.declared": "declared: an arrow",
   "sign.arbitrary": "A component’s sign is arbitrary, so the dipole has an axis and no direction until you declare the polarity.",
+  "sign.undeclared": "The dipole has an axis and no direction until you declare that the sign of these maps is the true one.",
   "sign.declared": "The sign as shown is declared to be the true one, for every map of the table.",
   "sign.turned": "The sign of this map is turned; turn it again for the sign of the table.",
   "map.back": "back",
@@ -180,7 +185,8 @@ const WORDS = {
   "understood.interpolated": "Interpolated channels, divided by commas: no data, and not counted",
   "understood.laplacian": "Are the maps surface Laplacians (current densities)?",
   "understood.sphering": "Without its sphering matrix, where that is kept apart, an unmixing matrix gives wrong maps.",
-  "understood.times": "Times of the maps, in place of those found",
+  "understood.written": "Columns, fields and characters",
+  "understood.unit": "Unit of the times",
   "understood.start": "start",
   "understood.step": "step",
   "understood.baseline": "Baseline, whose mean is subtracted",
@@ -244,17 +250,27 @@ export function furtherText(count, later) {
 
 /** @param {string} subject what the answer is for */
 export function keptText(subject) {
-  return `The previous answer (${subject}) is still shown.`;
+  return `The answer (${subject}) stays as it is.`;
+}
+
+/** A map by its name, and by its time where the name is not that. @param {Answer} answer @param {number} index */
+export function mapText({ maps, preamble }, index) {
+  const { name } = maps[index] ?? { name: "" };
+  const { times } = preamble.understood;
+  const time = times?.times[index];
+  const named = time === undefined || Number.parseFloat(name.replace(/^t[=_ ]*/i, "")) === time;
+  return named ? shortName(name) : `${shortName(name)} · ${timeText(time, times?.unit ?? "")}`;
 }
 
 /** Which map of which inputs. @param {Answer} answer */
-export function subjectText({ names, maps, chosen, example }) {
+export function subjectText(answer) {
+  const { names, chosen, example } = answer;
   const map = shortName(names.maps ?? "") || word("slot.pasted");
   const electrodes =
     names.electrodes === null ? word("slot.standard") : shortName(names.electrodes) || word("slot.pasted-electrodes");
   const invented = example === null ? "" : `invented example “${example.title}”${example.edited ? ", edited" : ""}`;
   const together = names.maps !== "" && names.electrodes === names.maps;
-  return [shortName(maps[chosen]?.name ?? ""), map, together ? "" : electrodes, invented].filter((part) => part).join(" · ");
+  return [mapText(answer, chosen), map, together ? "" : electrodes, invented].filter((part) => part).join(" · ");
 }
 
 /** @param {Inputs} inputs that an invented map has replaced */
@@ -344,7 +360,7 @@ export function settingsText(names) {
   return names.map((name) => SETTING_NAMES[name] ?? name).join(", ");
 }
 
-/** What went with the last change. @param {{ replaced: string[], dropped: string[] }} said */
+/** What went with the last change. @param {Said} said */
 export function saidText({ replaced, dropped }) {
   const files = replaced.map((name) => shortName(name) || word("slot.pasted"));
   const parts = [];
@@ -427,6 +443,13 @@ export function labelLines(labels) {
   ];
   const lines = lists.filter(([, words]) => words.length > 0).map(([title, words]) => `${title}: ${listText(words)}.`);
   return [`With a position and a value: ${labels.matched}.`, ...lines];
+}
+
+/** When the maps are said to be, before other times are entered. @param {Understood["times"]} moments */
+export function timesText(moments) {
+  if (moments === null) return "Times of the maps: not known";
+  const { times, unit } = moments;
+  return `Times of the maps: ${timeText(times[0], "")} to ${timeText(times[times.length - 1], unit)}`;
 }
 
 /** @param {"above" | "left"} view @param {Record<string, string>} ends labels of the outermost electrodes */

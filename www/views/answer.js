@@ -1,8 +1,8 @@
 /** The answer in a sentence, first and largest, and the frame around everything that belongs to it. */
 
 import { typeset } from "../text/figures.js";
-import { subjectText } from "../text/words.js";
-import { make, need } from "./element.js";
+import { subjectText, word } from "../text/words.js";
+import { make, need, speak } from "./element.js";
 import { dropOrphanedNote, withTerms } from "./terms.js";
 
 /** @import { Session } from "../session/session.js" */
@@ -36,6 +36,7 @@ export function showAnswer(session) {
       const map = answer.maps[answer.chosen];
       const text = sheet?.sentence ?? (map !== undefined && "error" in map ? `${map.name}: ${map.error.message}` : "");
       const told = new Set();
+      const before = sentence.textContent ?? "";
       sentence.replaceChildren(
         ...splitSentence(text).map((part, at) => {
           const element = make("span", "", { class: at === 0 ? "first" : "rest" });
@@ -44,7 +45,8 @@ export function showAnswer(session) {
         }),
       );
       dropOrphanedNote();
-      need("spoken", HTMLElement).textContent = splitSentence(text)[0];
+      // What was said before is not said again.
+      speak(splitSentence(typeset(text)).find((part) => !before.includes(part)) ?? word("answer.unchanged"));
       hint.textContent = !sheet && map !== undefined && "error" in map ? map.error.hint : "";
       hint.hidden = hint.textContent === "";
     },

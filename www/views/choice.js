@@ -3,17 +3,18 @@
  * is listed in blocks (browsers stall over lists of many thousand entries) and a map can be asked for by its number.
  */
 
-import { percentText, shortName } from "../text/figures.js";
-import { furtherText, word } from "../text/words.js";
+import { percentText } from "../text/figures.js";
+import { furtherText, mapText, word } from "../text/words.js";
 import { make, need } from "./element.js";
 
 /** @import { Session } from "../session/session.js" */
 
 const BLOCK = 500;
 
-/** @param {MapSummary} map */
-function optionText(map) {
-  return `${shortName(map.name)} · ${"rv" in map ? `RV ${percentText(map.rv)}` : word("choice.unfitted")}`;
+/** @param {Answer} answer @param {number} index */
+function optionText(answer, index) {
+  const map = answer.maps[index];
+  return `${mapText(answer, index)} · ${"rv" in map ? `RV ${percentText(map.rv)}` : word("choice.unfitted")}`;
 }
 
 /** @param {number} index @param {string} text */
@@ -42,7 +43,8 @@ export function showChoice(session) {
   number.addEventListener("change", () => session.choose(number.valueAsNumber - 1));
 
   /** @param {Answer} answer */
-  function listMaps({ key, maps, count, chosen, fitted }) {
+  function listMaps(answer) {
+    const { key, maps, count, chosen, fitted } = answer;
     const from = BLOCK * Math.floor(chosen / BLOCK);
     const end = Math.min(from + BLOCK, count);
     if (key !== listed.key || from !== listed.from || listed.to > maps.length) {
@@ -54,11 +56,11 @@ export function showChoice(session) {
     // Those of earlier settings are rewritten as they are fitted again.
     for (; listed.fitted < Math.min(listed.to, fitted); listed.fitted++) {
       const option = list.querySelector(`option[value="${listed.fitted}"]`);
-      if (option !== null) option.textContent = optionText(maps[listed.fitted]);
+      if (option !== null) option.textContent = optionText(answer, listed.fitted);
     }
     const last = end < count ? list.lastElementChild : null;
     for (; listed.to < Math.min(end, maps.length); listed.to++) {
-      list.insertBefore(optionElement(listed.to, optionText(maps[listed.to])), last);
+      list.insertBefore(optionElement(listed.to, optionText(answer, listed.to)), last);
     }
     list.value = String(chosen);
   }

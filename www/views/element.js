@@ -1,5 +1,7 @@
 /** Elements of the template, by id and kind. */
 
+import { NO_BREAK } from "../text/figures.js";
+
 /**
  * @template {HTMLElement} T
  * @param {string} id
@@ -22,4 +24,10 @@ export function make(tag, text, attributes = {}) {
   element.textContent = text;
   for (const [name, value] of Object.entries(attributes)) element.setAttribute(name, value);
   return element;
+}
+
+/** Tells a screen reader; the same words twice running would not be heard. @param {string} text */
+export function speak(text) {
+  const spoken = need("spoken", HTMLElement);
+  spoken.textContent = spoken.textContent === text ? `${text}${NO_BREAK}` : text;
 }

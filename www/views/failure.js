@@ -45,9 +45,21 @@ function helpRows(session, failure) {
   });
 }
 
+/**
+ * Where a failure is said: what comes from the head or from a card, beside the setting that brought it about.
+ * @param {SessionState} state
+ * @param {Element | null} row of the cards that was changed last
+ */
+function placeOf(state, row) {
+  const { failure, refused, changed } = state;
+  if (failure !== null && comesFromHead(state)) return need("head-failure", HTMLElement);
+  const fromCard = failure !== null && refused === null && changed.length > 0 && !changed.includes("exclude");
+  return fromCard && row?.isConnected ? row : need("failure-place", HTMLElement);
+}
+
 /** Whether someone types, or works where the failure is said too. @param {Element | null} element */
 function underHands(element) {
-  return element !== null && element.matches("textarea, #electrode-list *, .disc, .head-edit *, .card *");
+  return element !== null && element.matches("textarea, #electrode-list *, .disc, .head-edit *");
 }
 
 /** @param {Session} session */
@@ -67,23 +79,41 @@ export function showFailure(session) {
     need("main", HTMLElement).focus();
   });
 
+  /** @type {Element | null} */
+  let row = null;
+  document.addEventListener(
+    "change",
+    ({ target }) => {
+      row = target instanceof Element ? target.closest(".card .setting-row") : null;
+    },
+    true,
+  );
+  /** What had the focus when the panel was put away. */
+  let tried = "";
   session.watch(
     (state) => state.failure,
     (failure, state) => {
+      const help = need("failure-help", HTMLElement);
+      // Who tries one setting after the other goes on where they were, and is not left nowhere in between.
+      if (panel.contains(document.activeElement)) {
+        tried = help.contains(document.activeElement) ? (document.activeElement?.id ?? "") : "";
+        need("main", HTMLElement).focus({ preventScroll: true });
+      }
       panel.hidden = failure === null;
-      // What comes from the head is said beside the head.
-      const place = need(failure !== null && comesFromHead(state) ? "head-failure" : "failure-place", HTMLElement);
-      if (panel.parentElement !== place) place.append(panel);
+      const place = placeOf(state, row);
+      if (place === row) row.after(panel);
+      else if (panel.parentElement !== place) place.append(panel);
       const { answer } = state;
       const others = answer !== null && state.inputs !== answer.inputs;
       restore.hidden = answer === null || (!others && state.settings === answer.settings);
       restore.textContent = word(others ? "failure.restore-input" : "failure.restore");
-      const rows = failure === null ? [] : helpRows(session, failure);
-      const help = need("failure-help", HTMLElement);
-      const focused = help.contains(document.activeElement) ? document.activeElement?.id : undefined;
+      const rows = failure === null || place === row ? [] : helpRows(session, failure);
       help.hidden = rows.length === 0;
       need("failure-rows", HTMLElement).replaceChildren(...rows);
-      if (focused) document.getElementById(focused)?.focus({ preventScroll: true });
+      if (failure !== null) {
+        if (document.activeElement?.id === "main") document.getElementById(tried)?.focus({ preventScroll: true });
+        tried = "";
+      }
       need("failure-message", HTMLElement).textContent = typeset(failure?.message ?? "");
       need("failure-hint", HTMLElement).textContent = failure?.hint ?? "";
       const kept = need("failure-kept", HTMLElement);

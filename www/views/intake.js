@@ -118,7 +118,7 @@ function showOthers(session) {
     const picked = [...(files.files ?? [])];
     files.value = "";
     try {
-      await session.add(await Promise.all(picked.map(inputOfFile)));
+      await session.add(picked.map(inputOfFile));
     } catch (error) {
       session.fail(error);
     }

@@ -18,10 +18,16 @@ function noteElement(note, told) {
 /** @param {Session} session */
 export function showNotes(session) {
   const list = need("notes", HTMLUListElement);
+  const warned = need("warned", HTMLElement);
   session.watch(
     (state) => state.answer?.preamble.notes,
     (notes) => {
       const told = new Set();
+      const warnings = (notes ?? []).filter(({ severity }) => severity === "warning");
+      warned.hidden = warnings.length === 0;
+      need("warned-notes", HTMLElement).replaceChildren(
+        ...warnings.map((note) => noteElement(note, new Set())),
+      );
       list.replaceChildren(
         ...(notes?.length ? notes.map((note) => noteElement(note, told)) : [make("li", word("notes.none"))]),
       );

@@ -2,8 +2,8 @@
 
 import { isTextField } from "../intake/drop.js";
 import { enteredNumber } from "../text/figures.js";
-import { word } from "../text/words.js";
-import { make } from "./element.js";
+import { timesText, word } from "../text/words.js";
+import { make, need } from "./element.js";
 
 /**
  * Puts a value in its place; undefined leaves it to the engine.
@@ -11,7 +11,7 @@ import { make } from "./element.js";
  */
 
 /** @param {string[]} path */
-function settingId(path) {
+export function settingId(path) {
   return `set-${path.join("-").replace(/[^\w-]/g, (letter) => `_${letter.codePointAt(0)}`)}`;
 }
 
@@ -50,8 +50,7 @@ export function choiceRow(apply, { path, options, value, from }, text) {
  * @param {(entered: string) => unknown} read undefined for what cannot be read
  */
 export function fieldRow(apply, path, text, held, read) {
-  const field = /** @type {HTMLInputElement} */ (make("input", "", { type: "text", autocomplete: "off" }));
-  field.value = held;
+  const field = /** @type {HTMLInputElement} */ (make("input", "", { type: "text", autocomplete: "off", value: held }));
   field.addEventListener("change", () => {
     const entered = field.value.trim();
     const value = entered === "" ? undefined : read(entered);
@@ -77,34 +76,76 @@ export function enteredList(entered) {
  * Two numbers that are only meant together.
  * @param {Apply} apply
  * @param {string} setting
+ * @param {string} legend
  * @param {[string, string]} keys
  * @param {Record<string, any>} held
- * @param {Record<string, unknown>} beside further parts of the setting
+ * @param {HTMLElement} unit of both; chosen, where it is a list
  */
-export function pairRow(apply, setting, keys, held, beside) {
+function pairRow(apply, setting, legend, keys, held, unit) {
   const row = make("fieldset", "", { class: "setting-row pair" });
-  row.append(make("legend", word(`understood.${setting}`)));
+  row.append(make("legend", legend));
   const fields = keys.map((key) => {
-    const field = /** @type {HTMLInputElement} */ (
-      make("input", "", { type: "text", inputmode: "decimal", autocomplete: "off", id: settingId([setting, key]) })
-    );
-    field.value = String(held[key] ?? "");
+    const value = String(held[key] ?? "");
+    const attributes = { type: "text", inputmode: "decimal", autocomplete: "off", id: settingId([setting, key]), value };
+    const field = /** @type {HTMLInputElement} */ (make("input", "", attributes));
     const label = make("label", word(`understood.${key}`));
     label.append(field);
     row.append(label);
     return field;
   });
-  row.addEventListener("change", (event) => {
-    if (!isTextField(event.target)) return;
+  row.append(unit);
+  row.addEventListener("change", () => {
     const numbers = fields.map((field) => enteredNumber(field.value));
     const empty = fields.every((field) => field.value.trim() === "");
     fields.forEach((field, at) => {
       field.setAttribute("aria-invalid", String(field.value.trim() !== "" && !Number.isFinite(numbers[at])));
     });
+    const beside = unit instanceof HTMLSelectElement ? { unit: unit.value } : {};
     if (empty) apply([setting], undefined);
     else if (numbers.every(Number.isFinite)) {
       apply([setting], { ...beside, [keys[0]]: numbers[0], [keys[1]]: numbers[1] });
     }
   });
   return row;
+}
+
+/**
+ * When the maps were, and the baseline as soon as that is known.
+ * @param {Apply} apply
+ * @param {PageSettings} settings
+ * @param {Understood["times"]} times
+ */
+export function timeRows(apply, settings, times) {
+  const unit = settings.times?.unit ?? times?.unit ?? "ms";
+  const units = /** @type {HTMLSelectElement} */ (
+    make("select", "", { id: settingId(["times", "unit"]), "aria-label": word("understood.unit") })
+  );
+  units.append(...["ms", "s"].map((one) => make("option", one)));
+  units.value = unit;
+  const rows = [pairRow(apply, "times", timesText(times), ["start", "step"], settings.times ?? {}, units)];
+  if (times !== null) {
+    const baseline = settings.baseline ?? {};
+    rows.push(pairRow(apply, "baseline", word("understood.baseline"), ["from", "to"], baseline, make("span", unit)));
+  }
+  return rows;
+}
+
+/**
+ * Writes a part of the page anew. What was typed there and not taken yet stays, as does the focus.
+ * @param {HTMLElement} part
+ * @param {() => void} write
+ */
+export function keepTyped(part, write) {
+  const focused = document.activeElement;
+  const inside = focused !== null && part.contains(focused);
+  /** @type {HTMLInputElement[]} */
+  const fields = [...part.querySelectorAll(`input[type="text"]`)].map((field) => /** @type {any} */ (field));
+  write();
+  for (const field of fields) {
+    const now = document.getElementById(field.id);
+    if (!(now instanceof HTMLInputElement) || now === field) continue;
+    if (now.defaultValue === field.defaultValue) now.value = field.value;
+    if (field === focused) now.setSelectionRange(field.selectionStart, field.selectionEnd);
+  }
+  if (inside) (document.getElementById(focused.id) ?? need("main", HTMLElement)).focus({ preventScroll: true });
 }

@@ -5,6 +5,11 @@ import { need } from "./element.js";
 
 /** @import { Session } from "../session/session.js" */
 
+/** What the maps are. @param {Answer | null} answer */
+function areOf(answer) {
+  return answer?.preamble.understood.columns_are;
+}
+
 /** @param {Session} session */
 export function showSign(session) {
   const flip = need("flip", HTMLButtonElement);
@@ -22,11 +27,12 @@ export function showSign(session) {
     },
   );
   session.watch(
-    ({ answer, settings }) => `${settings.flip.includes(answer?.chosen ?? -1)} ${settings.polarity}`,
+    ({ answer, settings }) => `${settings.flip.includes(answer?.chosen ?? -1)} ${settings.polarity} ${areOf(answer)}`,
     (_, { answer, settings }) => {
       const turned = settings.flip.includes(answer?.chosen ?? -1);
       flip.setAttribute("aria-pressed", String(turned));
-      const parts = [word(`sign.${settings.polarity}`)];
+      const arbitrary = settings.polarity === "arbitrary" && areOf(answer) === "time-points" ? "undeclared" : settings.polarity;
+      const parts = [word(`sign.${arbitrary}`)];
       if (turned) parts.unshift(word("sign.turned"));
       words.textContent = parts.join(" ");
     },

@@ -5,7 +5,7 @@
 
 import { termOf, termPieces, TERMS } from "../text/terms.js";
 import { word } from "../text/words.js";
-import { make, need } from "./element.js";
+import { make, need, speak } from "./element.js";
 
 const NOTE_ID = "term-note";
 /** Where a note may be appended inside; it is put after any other block. */
@@ -62,7 +62,7 @@ function openNote(button) {
   else block.after(note);
   button.setAttribute("aria-expanded", "true");
   button.setAttribute("aria-controls", NOTE_ID);
-  need("spoken", HTMLElement).textContent = `${term.words[0]}: ${term.line}`;
+  speak(`${term.words[0]}: ${term.line}`);
 }
 
 export function showTerms() {

@@ -8,7 +8,7 @@ import { harmless, shortName, typeset } from "../text/figures.js";
 import { columnText, factsText, labelLines, roleText, word } from "../text/words.js";
 import { make, need } from "./element.js";
 import { showPreview } from "./preview.js";
-import { choiceRow, enteredList, fieldRow, pairRow } from "./setting.js";
+import { choiceRow, enteredList, fieldRow, keepTyped, settingId, timeRows } from "./setting.js";
 
 /** @import { Session } from "../session/session.js" */
 
@@ -22,10 +22,15 @@ function inferenceElement(session, choice) {
   return row;
 }
 
-/** What matters most comes first, how characters are written last. @param {Choice} choice */
+/** How a table is written: found, it is seldom wrong, and stands folded away. @param {Choice} choice */
+function isPlain({ setting, from }) {
+  const written = ["encoding", "delimiter", "decimal", "label"].includes(setting) || setting.startsWith("columns.");
+  return written && (from === "found" || from === "declared");
+}
+
+/** What a file is comes first. @param {Choice} choice */
 function rank({ setting }) {
-  if (setting === "role") return 0;
-  return ["encoding", "delimiter", "decimal"].includes(setting) ? 2 : 1;
+  return setting === "role" ? 0 : 1;
 }
 
 /** Pieces of the input in a sentence may be long. @param {string} text */
@@ -62,37 +67,58 @@ function fileCard(parts) {
   return card;
 }
 
+/** Asks for the matrix without which an unmixing matrix may give wrong maps. @param {Session} session */
+function spheringRow(session) {
+  const row = make("p", word("understood.sphering"), { class: "setting-row" });
+  const pick = make("span", "", { class: "pick button" });
+  const file = /** @type {HTMLInputElement} */ (make("input", "", { type: "file", id: "sphering-file" }));
+  pick.append(make("label", word("pick.sphering"), { for: file.id }), file);
+  file.addEventListener("change", async () => {
+    const [picked] = file.files ?? [];
+    try {
+      if (picked !== undefined) session.addSphering(await inputOfFile(picked));
+    } catch (error) {
+      session.fail(error);
+    }
+  });
+  row.append(pick);
+  return row;
+}
+
 /** What can be said of the maps beyond what was inferred. @param {Session} session @param {Understood} understood */
-function mapFields(session, { columns_are: are, times }) {
+function furtherRows(session, { columns_are: are, times }) {
   const { settings, inputs } = session.read();
-  /** @type {HTMLElement[]} */
-  const rows = [];
-  if (are === "time-points") {
-    const unit = settings.times?.unit ?? times?.unit ?? "ms";
-    rows.push(
-      pairRow(session.setAt, "times", ["start", "step"], settings.times ?? {}, { unit }),
-      pairRow(session.setAt, "baseline", ["from", "to"], settings.baseline ?? {}, {}),
-    );
-    rows[0].append(make("span", unit, { class: "small" }));
-    rows[1].append(make("span", unit, { class: "small" }));
-  }
+  /** @type {Record<string, HTMLElement[]>} */
+  const rows = {};
+  if (are === "time-points") rows.columnsAre = timeRows(session.setAt, settings, times);
   if (settings.mapsAre === "unmixing" && !inputs.others.some(({ role }) => role === "sphering")) {
-    const row = make("p", word("understood.sphering"), { class: "setting-row" });
-    const pick = make("span", "", { class: "pick button" });
-    const file = /** @type {HTMLInputElement} */ (make("input", "", { type: "file", id: "sphering-file" }));
-    pick.append(make("label", word("pick"), { for: file.id }), file);
-    file.addEventListener("change", async () => {
-      const [picked] = file.files ?? [];
-      try {
-        if (picked !== undefined) session.addSphering(await inputOfFile(picked));
-      } catch (error) {
-        session.fail(error);
-      }
-    });
-    row.append(pick);
-    rows.push(row);
+    rows.mapsAre = [spheringRow(session)];
   }
   return rows;
+}
+
+/**
+ * @param {Session} session
+ * @param {Understood} understood
+ * @param {string} name of a file
+ * @param {boolean} open whether what is folded away was unfolded
+ */
+function cardOf(session, understood, name, open) {
+  const card = fileCard(understood.files.filter((file) => file.name === name));
+  const own = understood.choices.filter(({ file }) => file === name).sort((a, b) => rank(a) - rank(b));
+  const further = furtherRows(session, understood);
+  for (const choice of own.filter((one) => !isPlain(one))) {
+    card.append(inferenceElement(session, choice), ...(further[choice.setting] ?? []));
+  }
+  const plain = own.filter(isPlain);
+  if (plain.length > 0) {
+    const details = /** @type {HTMLDetailsElement} */ (make("details", ""));
+    details.open = open;
+    const summary = make("summary", word("understood.written"), { id: settingId(["files", name, "written"]) });
+    details.append(summary, ...plain.map((choice) => inferenceElement(session, choice)));
+    card.append(details);
+  }
+  return card;
 }
 
 /** A box to tick. @param {Session} session @param {"unusualHead" | "mirror"} setting */
@@ -117,13 +143,14 @@ function headCard(session, understood) {
   const { settings, offers } = session.read();
   const card = cardElement(word("understood.head"), "");
   card.id = "head-card";
-  card.append(need("preview", HTMLElement));
-  card.append(...understood.choices.filter(({ file }) => file === null).map((choice) => inferenceElement(session, choice)));
+  const rows = make("div", "");
+  card.append(need("preview", HTMLElement), rows);
+  rows.append(...understood.choices.filter(({ file }) => file === null).map((choice) => inferenceElement(session, choice)));
   const measured = understood.choices.some(({ setting }) => setting === "axes");
   const asked = understood.choices.some(({ setting }) => setting === "mirror");
-  if (measured && !asked) card.append(tickRow(session, "mirror"));
-  for (const line of labelLines(understood.labels)) card.append(make("p", line, { class: "small" }));
-  card.append(
+  if (measured && !asked) rows.append(tickRow(session, "mirror"));
+  for (const line of labelLines(understood.labels)) rows.append(make("p", line, { class: "small" }));
+  rows.append(
     fieldRow(
       session.setAt,
       ["interpolated"],
@@ -137,7 +164,7 @@ function headCard(session, understood) {
   if (laplacian !== undefined) {
     const value = settings.laplacian ?? undefined;
     const from = value === undefined ? undefined : "setting";
-    card.append(
+    rows.append(
       choiceRow(session.setAt, { ...laplacian, path: ["laplacian"], value, from }, word("understood.laplacian")),
     );
   }
@@ -154,18 +181,12 @@ export function showUnderstood(session) {
       if (preamble === undefined) return;
       const { understood } = preamble;
       const names = [...new Set(understood.files.map(({ name }) => name))];
-      const mapsFile = understood.choices.find(({ setting }) => setting === "mapsAre")?.file;
-      const focused = cards.contains(document.activeElement) ? document.activeElement?.id : undefined;
-      const elements = names.map((name) => {
-        const card = fileCard(understood.files.filter((file) => file.name === name));
-        const own = understood.choices.filter(({ file }) => file === name).sort((a, b) => rank(a) - rank(b));
-        card.append(...own.map((choice) => inferenceElement(session, choice)));
-        if (name === mapsFile) card.append(...mapFields(session, understood));
-        return card;
-      });
-      cards.replaceChildren(...elements, headCard(session, understood));
+      const unfolded = [...cards.querySelectorAll("details[open]")].map((details) => details.parentElement?.dataset.file);
+      const elements = names.map((name) => cardOf(session, understood, name, unfolded.includes(name)));
+      const failure = need("failure", HTMLElement);
+      if (cards.contains(failure)) need("failure-place", HTMLElement).append(failure);
       // Whoever works in the cards goes on where they were.
-      if (focused) document.getElementById(focused)?.focus({ preventScroll: true });
+      keepTyped(cards, () => cards.replaceChildren(...elements, headCard(session, understood)));
       paint();
     },
   );

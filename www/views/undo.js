@@ -18,6 +18,11 @@ export function showUndo(session) {
     if (past.length === 1) need("main", HTMLElement).focus({ preventScroll: true });
   };
   button.addEventListener("click", back);
+  const sphering = need("take-sphering", HTMLButtonElement);
+  sphering.addEventListener("click", () => {
+    session.takeAsSphering();
+    button.focus();
+  });
   document.addEventListener("keydown", (event) => {
     const wanted = (event.ctrlKey || event.metaKey) && !event.shiftKey && !event.altKey && event.key === "z";
     // A text field has an undo of its own.
@@ -27,16 +32,18 @@ export function showUndo(session) {
   });
   session.watch(
     (state) => state.past,
-    (past, { said }) => {
+    (past) => {
       line.hidden = past.length === 0;
       button.textContent = past.length === 0 ? word("undo") : `${word("undo")}: ${settingsText(past[past.length - 1].what)}`;
-      need("said", HTMLElement).textContent = said === null ? "" : saidText(said);
     },
   );
   session.watch(
-    (state) => state.said,
-    (said) => {
+    ({ past, said }) => said ?? past,
+    (_, { said }) => {
       need("said", HTMLElement).textContent = said === null ? "" : saidText(said);
+      sphering.hidden = said?.sphering === undefined;
+      // Who dropped files further down sees what became of them.
+      if (said !== null && !need("intake", HTMLElement).contains(document.activeElement)) line.scrollIntoView({ block: "nearest" });
     },
   );
 }
