@@ -34,7 +34,7 @@ fn text(file: &[u8]) {
         drop(told(read("file", file, |_| Reading::default())));
         let encoding = Encoding::ALL.get(file.len() % 7).copied();
         let delimiter = Delimiter::ALL.get(file.len() / 7 % 7).copied();
-        drop(told(read("file", file, |_| Reading { encoding, delimiter })));
+        drop(told(read("file", file, |_| Reading { encoding, delimiter, unused: file.len().is_multiple_of(5) })));
     }
 }
 

@@ -23,7 +23,8 @@ fn sources(files: &[(&str, Option<Role>, &[u8])], wishes: &Wishes) -> Result<Und
     for &(name, role, bytes) in files {
         let how = |name: &str| {
             let wish = wishes.files.get(name);
-            Reading { encoding: wish.and_then(|wish| wish.encoding), delimiter: wish.and_then(|wish| wish.delimiter) }
+            let (encoding, delimiter) = wish.map_or((None, None), |wish| (wish.encoding, wish.delimiter));
+            Reading { encoding, delimiter, unused: wish.is_some_and(|wish| wish.role == Some(Role::Unused)) }
         };
         let contents = read(name, bytes, how)?.into_iter();
         sources.extend(contents.map(|(name, content)| Source { name, role, content }));

@@ -24,8 +24,15 @@ fn hammer(reader: &str, endings: &[&str], read: impl Fn(&[u8])) {
     let mut seeds = files(&tests_folder().join("fuzz/corpus").join(reader));
     assert!(!seeds.is_empty(), "{reader} has no corpus");
     seeds.extend(files(&tests_folder().join("data/finds").join(reader)));
+    let understood = tests_folder().join("data/understood");
     let fits = |name: &String| endings.iter().any(|ending| name.ends_with(ending));
     seeds.extend(samples().into_iter().filter(fits).map(|name| sample(&name)).filter(|file| file.len() <= LONGEST));
+    let tables = std::fs::read_dir(&understood).unwrap().map(|entry| entry.unwrap().file_name().into_string().unwrap());
+    let mut tables: Vec<String> = tables.filter(fits).collect();
+    tables.sort();
+    seeds.extend(
+        tables.iter().map(|name| std::fs::read(understood.join(name)).unwrap()).filter(|file| file.len() <= LONGEST),
+    );
 
     let run = |file: &[u8]| {
         let start = Instant::now();

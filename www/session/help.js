@@ -5,7 +5,7 @@ const COLUMNS = ["columns.label", "columns.x", "columns.y", "columns.z"];
 /** @type {Record<string, string[]>} */
 const HELP = {
   "input-encoding": ["encoding"],
-  "table-ragged": ["delimiter", "decimal"],
+  "table-ragged": ["delimiter", "decimal", "role"],
   "table-columns": ["role", "orientation", "delimiter", ...COLUMNS],
   "number-expected": ["role", "decimal", "delimiter", "orientation", ...COLUMNS],
   "column-unknown": [...COLUMNS, "label"],

@@ -362,13 +362,14 @@ impl Study {
         }
         let name = &self.tables.understood.maps.names[index];
         let place = Place { label: missing.first().cloned(), map: Some(name.clone()), ..Place::input("maps") };
-        Err(Finding::new(Code::MapIncomplete).at(place).with("map", name.as_str()).with("labels", missing).into())
+        let finding = Finding::new(Code::MapIncomplete).at(place).with("map", name.as_str()).with("labels", missing);
+        Err(self.tables.understood.in_file(finding.into()))
     }
 
     fn constant(&self, index: usize) -> Error {
         let name = &self.tables.understood.maps.names[index];
         let place = Place { map: Some(name.clone()), ..Place::input("maps") };
-        Finding::new(Code::MapConstant).at(place).with("map", name.as_str()).into()
+        self.tables.understood.in_file(Finding::new(Code::MapConstant).at(place).with("map", name.as_str()).into())
     }
 
     /// The map is fitted as it is given; a turned sign turns what comes of it, so that no digit of the position changes.

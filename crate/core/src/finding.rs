@@ -421,6 +421,14 @@ impl Error {
         self
     }
 
+    /// The same, where it names a file that stands inside another.
+    pub fn beneath(mut self, archive: &str) -> Self {
+        if let Some(file) = self.0.place.as_mut().and_then(|place| place.file.as_mut()) {
+            *file = format!("{archive}/{file}");
+        }
+        self
+    }
+
     /// The same, in an input and, where one is known, a file; a file inside is kept.
     pub fn within(mut self, input: &'static str, file: Option<&str>) -> Self {
         let place = self.0.place.get_or_insert_default();

@@ -101,7 +101,11 @@ fn contents(name: &str, role: Option<Role>, bytes: &[u8], wishes: &Wishes) -> Re
 
 fn reading(wishes: &Wishes, name: &str) -> Reading {
     let wish = wishes.files.get(name);
-    Reading { encoding: wish.and_then(|wish| wish.encoding), delimiter: wish.and_then(|wish| wish.delimiter) }
+    Reading {
+        encoding: wish.and_then(|wish| wish.encoding),
+        delimiter: wish.and_then(|wish| wish.delimiter),
+        unused: wish.is_some_and(|wish| wish.role == Some(Role::Unused)),
+    }
 }
 
 fn sha256(bytes: &[u8]) -> String {

@@ -37,6 +37,8 @@ pub struct Reading {
     pub encoding: Option<Encoding>,
     /// What divides its fields.
     pub delimiter: Option<Delimiter>,
+    /// Whether it is not needed, and may hold anything.
+    pub unused: bool,
 }
 
 /// Whether a matrix can be a table of electrodes and maps, either way round.
@@ -62,7 +64,7 @@ pub fn read(name: &str, bytes: &[u8], how: impl Fn(&str) -> Reading) -> Result<V
     }
     let mut arrays = Vec::new();
     let mut files = Vec::new();
-    for (inside, bytes) in zip::read(bytes)? {
+    for (inside, bytes) in zip::read(bytes).map_err(|error| error.beneath(name))? {
         let own = format!("{name}/{inside}");
         let content = read_one(&bytes, how(&own)).map_err(|error| error.inside(&own))?;
         match (content.format, inside.strip_suffix(".npy")) {
@@ -79,6 +81,11 @@ pub fn read(name: &str, bytes: &[u8], how: impl Fn(&str) -> Reading) -> Result<V
 }
 
 fn read_one(bytes: &[u8], how: Reading) -> Result<Content, Error> {
+    let content = read_as_told(bytes, how);
+    if how.unused && content.is_err() { Ok(Content::of(Format::DelimitedText, Vec::new())) } else { content }
+}
+
+fn read_as_told(bytes: &[u8], how: Reading) -> Result<Content, Error> {
     match signature::container(bytes)? {
         None => read_text(bytes, how),
         Some(Format::Npy) => Ok(Content::of(Format::Npy, npy::read(bytes)?)),

@@ -86,6 +86,7 @@ pub(super) fn read_table(text: &str, wish: Option<Delimiter>) -> Result<Delimite
         }
         _ => (Rows::split(text, delimiter, MOST_ROWS)?, delimiter),
     };
+    rows.drop_empty();
     let title = rows.square()?;
     let remark = rows.remark.take();
     let width = rows.counts.first().map_or(0, |&count| count as usize);
@@ -117,9 +118,10 @@ const LABEL_NAMES: [&str; 12] = [
     "ch",
 ];
 
-/// Whether a column of this name usually holds labels.
+/// Whether a column of this name usually holds labels: `Channel`, `Electrode name`, `ch_names`.
 pub fn is_label_name(field: &str) -> bool {
-    LABEL_NAMES.iter().any(|name| field.eq_ignore_ascii_case(name))
+    let usual = |word: &str| LABEL_NAMES.iter().any(|name| word.eq_ignore_ascii_case(name));
+    field.len() < 32 && field.split([' ', '_', '-']).all(usual)
 }
 
 /// Whether a field says that there is no value.
@@ -227,6 +229,8 @@ impl Rows {
                 if rows.counts.is_empty() {
                     rows.remark = Some((line, remark.trim_start_matches(['#', '%']).trim().to_owned()));
                 }
+            } else if line == 1 && begun.starts_with("sep=") && begun.trim_end().len() <= 5 {
+                // Tells a spreadsheet what divides the fields.
             } else if !begun.trim_end_matches('\u{1a}').is_empty() {
                 let before = rows.ends.len();
                 if quotes && content.contains('"') {
@@ -327,6 +331,32 @@ impl Rows {
             start = end as usize;
             (row, field)
         })
+    }
+
+    /// Takes out rows of which every field is empty, as spreadsheets leave them; among rows of numbers alone they have their
+    /// place, unless they come last.
+    fn drop_empty(&mut self) {
+        let empty: Vec<bool> = self.empty_ends().iter().zip(&self.counts).map(|(e, count)| e == count).collect();
+        if !empty.contains(&true) {
+            return;
+        }
+        let is_word = |field: &str| !is_missing(field) && number_with_comma(field).is_none();
+        let last = empty.iter().rposition(|empty| !empty).map_or(0, |last| last + 1);
+        let worded = self.fields().skip_while(|(row, _)| *row == 0).any(|(_, field)| is_word(field));
+        let mut row = 0;
+        let goes: Vec<bool> = empty
+            .iter()
+            .map(|empty| {
+                row += 1;
+                *empty && (worded || row > last)
+            })
+            .collect();
+        let mut of_fields = self.counts.iter().zip(&goes).flat_map(|(&count, &goes)| (0..count).map(move |_| goes));
+        self.ends.retain(|_| !of_fields.next().unwrap_or(false));
+        for list in [&mut self.counts, &mut self.lines] {
+            let mut goes = goes.iter();
+            list.retain(|_| !goes.next().copied().unwrap_or(false));
+        }
     }
 
     /// Gives every row as many fields as most have. Marks at the end of a line begin no column, names of columns may lack the one above the
@@ -540,6 +570,7 @@ mod tests {
         // A column of values, and one whose rows are counted.
         assert_eq!(delimiter("1,2\n3,4"), Some(Delimiter::Blanks));
         assert_eq!(delimiter("1,2\n2,4\n3,1"), Some(Delimiter::Comma));
+        assert_eq!(delimiter("1,-2\n3,-4"), Some(Delimiter::Comma));
     }
 
     #[test]

@@ -59,7 +59,7 @@ pub fn read(file: &[u8]) -> Result<Vec<(String, Vec<u8>)>, Error> {
             }
             let content = entry.content(file, at, room)?;
             if MAGICS.iter().any(|magic| content.starts_with(magic)) {
-                return Err(no_table("archive"));
+                return Err(no_table("archive").inside(&entry.name));
             }
             room -= content.len();
             files.push((entry.name, content));

@@ -1,9 +1,12 @@
 use super::Decimal;
+use super::positions::is_axis_name;
+use super::role::is_head;
 use crate::electrode::{Kind, Label, Reading};
 use crate::finding::{Error, Origin, Place};
 use crate::read::{
     Body, Cells, Part, expect_number, has_decimal_comma, is_label_name, is_missing, number, number_with_comma,
 };
+use core::ops::Range;
 use ndarray::ArrayView2;
 
 /// Rows that are looked at to find words.
@@ -30,6 +33,8 @@ enum Fields<'a> {
     Numbers(ArrayView2<'a, f64>),
     /// Columns of equally many numbers or words.
     Columns(Vec<Column<'a>>),
+    /// Fields of text whose columns, from one on, are the rows here.
+    Turned(&'a Cells, usize),
 }
 
 #[derive(Clone, Copy, Debug)]
@@ -89,15 +94,54 @@ impl<'a> Grid<'a> {
             Body::Numbers(numbers) => grid(Fields::Numbers(numbers.view()), numbers.ncols()),
             Body::Cells(cells) => {
                 let mut grid = grid(Fields::Text(cells, 0), cells.width());
-                grid.decimal = Some(decimal.map_or_else(|| decimal_mark(cells), |wish| (wish, Origin::Setting)));
+                // Names above the columns may look like numbers of another kind.
+                let found = |first: usize| {
+                    let mark = decimal_mark(cells, first..cells.height());
+                    decimal.map_or((mark.unwrap_or(Decimal::Point), Origin::Found), |wish| (wish, Origin::Setting))
+                };
+                grid.decimal = Some(found(1));
                 grid.header = grid.first_row(cells);
-                if grid.header != Header::Absent {
+                if grid.header == Header::Absent {
+                    grid.decimal = Some(found(0));
+                } else {
                     grid.names = cells.row(0).map(String::from).collect();
                     grid.body = Fields::Text(cells, 1);
                 }
-                grid
+                grid.upright(cells)
             }
         })
+    }
+
+    /// The same, turned where electrodes lie in its columns: labels alone in one row, or x, y and z below them.
+    fn upright(self, cells: &'a Cells) -> Self {
+        let site = |name: &str| matches!(Reading::of(&Label::new(name)).kind, Kind::Site(_));
+        let words = |row: usize| cells.row(row).all(|field| !is_missing(field) && self.parse(field).is_none());
+        if cells.height() == 1
+            && cells.width() > 1
+            && words(0)
+            && 2 * cells.row(0).filter(|n| site(n)).count() > cells.width()
+        {
+            return Self { names: vec![String::new()], body: Fields::Turned(cells, 0), header: Header::Absent, ..self };
+        }
+        let whole = |first: usize| {
+            let value =
+                |row: usize, column: usize| is_missing(self.word(row, column)) || self.number(row, column).is_some();
+            (first..self.width()).all(|column| !self.name(column).is_empty() && (0..3).all(|row| value(row, column)))
+        };
+        if self.header == Header::Absent || self.height() != 3 || self.width() < 5 {
+            return self;
+        }
+        let named = ['x', 'y', 'z'].into_iter().enumerate().all(|(row, axis)| is_axis_name(self.word(row, 0), axis));
+        if named && whole(1) {
+            let names = ["label", "x", "y", "z"].map(String::from).to_vec();
+            return Self { names, body: Fields::Turned(cells, 1), header: Header::Found, ..self };
+        }
+        if !cells.is_headed() || !whole(0) {
+            return self;
+        }
+        let names = vec![String::new(); 4];
+        let turned = Self { names, body: Fields::Turned(cells, 0), header: Header::Absent, ..self.clone() };
+        if is_head(&turned, [1, 2, 3]) { turned } else { self }
     }
 
     /// Vectors side by side, named by their parts.
@@ -121,12 +165,18 @@ impl<'a> Grid<'a> {
             Fields::Text(cells, first) => cells.height().saturating_sub(*first),
             Fields::Numbers(numbers) => numbers.nrows(),
             Fields::Columns(columns) => columns.first().map_or(0, |column| column.height()),
+            Fields::Turned(cells, first) => cells.width().saturating_sub(*first),
         }
     }
 
     /// Whether it can only hold numbers, so that labels must come from elsewhere.
     pub fn is_numeric(&self) -> bool {
         matches!(self.body, Fields::Numbers(_))
+    }
+
+    /// Whether it is a list of words.
+    pub fn is_words(&self) -> bool {
+        matches!(&self.body, Fields::Columns(columns) if matches!(columns.as_slice(), [Column::Words(_)]))
     }
 
     pub fn names(&self) -> &[String] {
@@ -141,6 +191,7 @@ impl<'a> Grid<'a> {
     pub fn line(&self, row: usize) -> usize {
         match &self.body {
             Fields::Text(cells, first) => cells.line(row + first),
+            Fields::Turned(cells, _) => cells.line(0),
             _ => row + 1,
         }
     }
@@ -148,7 +199,7 @@ impl<'a> Grid<'a> {
     /// Line of the header, or else of the first row.
     pub fn first_line(&self) -> usize {
         match &self.body {
-            Fields::Text(cells, _) => cells.line(0),
+            Fields::Text(cells, _) | Fields::Turned(cells, _) => cells.line(0),
             _ => 1,
         }
     }
@@ -157,6 +208,7 @@ impl<'a> Grid<'a> {
     pub fn word(&self, row: usize, column: usize) -> &str {
         match &self.body {
             Fields::Text(cells, first) => cells.field(row + first, column),
+            Fields::Turned(cells, first) => cells.field(column, row + first),
             Fields::Numbers(_) => "",
             Fields::Columns(columns) => match columns.get(column) {
                 Some(Column::Words(words)) => words.get(row).map_or("", String::as_str),
@@ -169,7 +221,7 @@ impl<'a> Grid<'a> {
     pub fn number(&self, row: usize, column: usize) -> Option<f64> {
         let plain = |matrix: &ArrayView2<'_, f64>, column| matrix.get((row, column)).copied().filter(|v| !v.is_nan());
         match &self.body {
-            Fields::Text(cells, first) => self.parse(cells.field(row + first, column)),
+            Fields::Text(..) | Fields::Turned(..) => self.parse(self.word(row, column)),
             Fields::Numbers(numbers) => plain(numbers, column),
             Fields::Columns(columns) => match columns.get(column) {
                 Some(Column::Numbers(numbers)) => plain(numbers, 0),
@@ -192,8 +244,8 @@ impl<'a> Grid<'a> {
     /// `number-expected`, `number-range` at the place.
     pub fn value(&self, row: usize, column: usize, place: impl FnOnce() -> Place) -> Result<f64, Error> {
         match &self.body {
-            Fields::Text(cells, first) => {
-                let field = cells.field(row + first, column);
+            Fields::Text(..) | Fields::Turned(..) => {
+                let field = self.word(row, column);
                 if is_missing(field) { Ok(f64::NAN) } else { expect_number(field, self.comma(), place) }
             }
             Fields::Columns(columns) if matches!(columns.get(column), Some(Column::Words(_))) => {
@@ -273,19 +325,28 @@ impl<'a> Grid<'a> {
         self.column(is_label_name).or_else(|| self.words())
     }
 
-    /// Whether the first row holds names: when it holds a usual name of the label column; else when it holds no number,
-    /// numbers follow, and it does not look like a spoilt row of data.
+    /// Whether the first row holds names: when it holds a usual name of the label column, or x, y and z; else when it holds no number,
+    /// numbers follow, and it does not look like a spoilt row of data; else when it holds nothing above the labels and
+    /// numbers that rise, as programs write that number their columns.
     fn first_row(&self, cells: &'a Cells) -> Header {
-        if cells.is_headed() || cells.row(0).any(is_label_name) {
+        let axes = ['x', 'y', 'z'].into_iter().all(|axis| cells.row(0).any(|name| is_axis_name(name, axis)));
+        if cells.is_headed() || axes || cells.row(0).any(is_label_name) {
             return Header::Found;
         }
         let is_number = |field: &str| self.parse(field).is_some();
         let numbers = |row: usize| cells.row(row).any(is_number);
-        if numbers(0) || !(1..cells.height()).any(numbers) {
+        if !(1..cells.height()).any(numbers) {
             return Header::Absent;
         }
         let mut below = self.clone();
         below.body = Fields::Text(cells, 1);
+        if numbers(0) {
+            let above: Option<Vec<f64>> = cells.row(0).skip(1).map(|field| self.parse(field)).collect();
+            let rises = above.is_some_and(|row| row.windows(2).all(|pair| pair.first() < pair.last()));
+            let rises = rises && (cells.width() > 2 || cells.field(0, 1) == "0");
+            let corner = cells.field(0, 0).is_empty() && below.words() == Some(0);
+            return if corner && rises { Header::Assumed } else { Header::Absent };
+        }
         // A spoilt row of data has the label of a site, or a field that begins like a number.
         let label = below.words().map_or("", |column| cells.field(0, column));
         let like_number =
@@ -328,19 +389,14 @@ fn goes_beside(one: &Part, other: &Part) -> bool {
         && other.name.is_some()
 }
 
-/// A comma is the decimal mark where numbers have commas and none has a point.
-fn decimal_mark(cells: &Cells) -> (Decimal, Origin) {
-    if !cells.contains(',') {
-        return (Decimal::Point, Origin::Found);
-    }
-    let mut commas = false;
-    for row in 0..cells.height() {
-        for field in cells.row(row) {
-            if field.contains('.') && number(field).is_some() {
-                return (Decimal::Point, Origin::Found);
-            }
-            commas |= has_decimal_comma(field);
+/// A comma is the decimal mark where numbers of these rows have commas and none has a point; `None` where none has either.
+fn decimal_mark(cells: &Cells, rows: Range<usize>) -> Option<Decimal> {
+    let mut commas = None;
+    for field in rows.filter(|_| cells.contains(',')).flat_map(|row| cells.row(row)) {
+        if field.contains('.') && number(field).is_some() {
+            return Some(Decimal::Point);
         }
+        commas = commas.or(has_decimal_comma(field).then_some(Decimal::Comma));
     }
-    (if commas { Decimal::Comma } else { Decimal::Point }, Origin::Found)
+    commas
 }

@@ -13,10 +13,13 @@ const INPUT: &str = "maps";
 /// Names that are looked at to tell whether they are labels.
 const SAMPLE: usize = 600;
 
-/// Maps, and whether their table has labels of its own.
+/// Maps, and what their table has of its own.
 pub(super) struct Read {
     pub maps: Maps,
+    /// Whether it has labels.
     pub labelled: bool,
+    /// Whether it has names for the maps.
+    pub named: bool,
 }
 
 /// Maps of a grid: a column, a row, or a matrix of either orientation. Labels stand in a column or in the header, whichever holds more
@@ -91,12 +94,14 @@ pub(super) fn read_maps(
             })?
         }
     };
+    let mut named = false;
     let name = |index: usize| {
         let written = match (in_rows, label) {
             (true, _) => columns.get(index).map_or("", |&column| grid.name(column)),
             (false, Some(column)) => grid.word(index, column),
             (false, None) => "",
         };
+        named |= !written.is_empty();
         if written.is_empty() { format!("map {}", index + 1) } else { written.to_owned() }
     };
     let names: Vec<String> = (0..count).map(name).collect();
@@ -144,7 +149,7 @@ pub(super) fn read_maps(
     }
     let used = columns.iter().map(|&column| (column, "value")).collect();
     found.columns = Columns { passed_over, ..Columns::new(label, used) };
-    Ok(Read { maps: Maps { labels, lines, names, values }, labelled })
+    Ok(Read { maps: Maps { labels, lines, names, values }, labelled, named })
 }
 
 /// Whether the first of several columns, one for each channel, holds the times or the numbers of the maps: it says so, or has
@@ -219,10 +224,15 @@ fn orientation(
     if above.0 >= 50 && above > beside {
         return (Some(Orientation::ChannelsInColumns), Origin::Found);
     }
+    let fits = |side: usize| known.iter().any(|labels| labels.len() == side && !unnamed(labels));
+    let has_header = grid.header != Header::Absent;
+    if label.is_some() && !has_header && beside.1 == 0 && fits(columns.len()) && !fits(grid.height()) {
+        // Names of maps, whose values follow the order of the electrodes.
+        return (Some(Orientation::ChannelsInColumns), Origin::Found);
+    }
     if label.is_some() {
         return (Some(Orientation::ChannelsInRows), if beside.0 >= 50 { Origin::Found } else { Origin::Assumed });
     }
-    let fits = |side: usize| known.iter().any(|labels| labels.len() == side && !unnamed(labels));
     let unmixing = wishes.maps_are == Some(MapsAre::Unmixing);
     match (fits(grid.height()), fits(columns.len())) {
         // An unmixing matrix has a row for each component.

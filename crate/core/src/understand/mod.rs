@@ -226,6 +226,11 @@ fn roles<'a>(grids: Vec<Grid<'a>>, told: Option<Role>, part: Option<&str>, only:
     let Some(told) = told else {
         return chosen_part(roles, part);
     };
+    // Both in several parts.
+    let holds = |wanted: Role| roles.iter().any(|(_, role)| *role == wanted);
+    if told == Role::ElectrodesAndMaps && holds(Role::Electrodes) && holds(Role::Maps) {
+        return chosen_part(roles, part);
+    }
     // Labels alone are electrodes too.
     let fits = |role: Role| {
         role == told
@@ -387,7 +392,7 @@ impl Chosen {
             columns.push((self.electrodes.unwrap_or_default(), std::mem::take(&mut found.columns)));
             electrodes = Some((read, label.is_some(), electrode_grid));
         }
-        let lists: Vec<Vec<Label>> = self
+        let mut lists: Vec<Vec<Label>> = self
             .labels
             .iter()
             .filter_map(|&index| grid(index))
@@ -435,7 +440,10 @@ impl Chosen {
             }
             None => columns.push((self.maps, maps_columns)),
         }
-        let maps::Read { mut maps, labelled } = read;
+        let maps::Read { mut maps, labelled, named } = read;
+        if !named && let Some(at) = names_of_maps(&lists, &maps, labelled) {
+            maps.names = lists.remove(at).iter().map(Label::to_string).collect();
+        }
         if let Some((read, false, electrode_grid)) = &mut electrodes
             && read.iter().all(|electrode| electrode.label.as_str().is_empty())
         {
@@ -510,6 +518,14 @@ impl Chosen {
             notes: found.notes,
         })
     }
+}
+
+/// The list of words that names the maps: as long as there are maps, not of sites, and not the one that names the electrodes.
+fn names_of_maps(lists: &[Vec<Label>], maps: &Maps, labelled: bool) -> Option<usize> {
+    let site = |label: &&Label| matches!(LabelReading::of(label).kind, LabelKind::Site(_));
+    let of_electrodes = lists.iter().position(|list| !labelled && list.len() == maps.labels.len());
+    let fits = |list: &Vec<Label>| list.len() == maps.names.len() && 2 * list.iter().filter(site).count() < list.len();
+    (0..lists.len()).find(|at| Some(*at) != of_electrodes && lists.get(*at).is_some_and(fits))
 }
 
 /// A label may stand once, unless it names no electrode of the scalp.
@@ -620,7 +636,7 @@ fn facts(
             used: Vec::new(),
             passed_over: Vec::new(),
         };
-        let mut main = None;
+        let mut roles: Vec<Role> = Vec::new();
         for (index, (grid, role)) in grids.iter().enumerate().filter(|(_, (grid, _))| grid.file == file) {
             let mut fact = fact(grid.part, *role, grid.height(), grid.width());
             fact.header = grid.header != Header::Absent;
@@ -628,17 +644,20 @@ fn facts(
                 fact.used = used_columns(grid, columns);
                 fact.passed_over = columns.passed_over.iter().map(|&column| written(grid, column)).collect();
             }
-            main = main.or(Some(*role).filter(|role| *role != Role::Unused));
+            roles.push(*role);
             facts.push(fact);
         }
         for (_, record) in records.iter().filter(|(own, _)| *own == file) {
             let role = role::role_of_record(record);
-            main = main.or(Some(role).filter(|role| *role != Role::Unused));
+            roles.push(role);
             facts.push(fact(None, role, record.len(), 2));
+        }
+        if roles.is_empty() {
+            facts.push(fact(None, Role::Unused, 0, 0));
         }
         let told = wishes.files.get(&source.name).is_some_and(|wish| wish.role.is_some());
         let from = if told { Origin::Setting } else { Origin::Found };
-        let role = main.unwrap_or(Role::Unused);
+        let role = role::together(&roles);
         if source.role.is_none() {
             found
                 .choices
@@ -682,7 +701,11 @@ fn note_details(grids: &[(Grid<'_>, Role)], found: &mut Found) {
         if let Some((decimal, from)) = grid.decimal {
             let name = found.file_name(grid);
             let choice = Choice::new("decimal", from, decimal.name()).of_file(&name);
-            found.choices.push(choice.options([Decimal::Point, Decimal::Comma].map(Decimal::name)));
+            let choice = choice.options([Decimal::Point, Decimal::Comma].map(Decimal::name));
+            // Its setting is for all tables of a file.
+            if !found.choices.iter().any(|known| known.path == choice.path) {
+                found.choices.push(choice);
+            }
             if decimal == Decimal::Comma && from == Origin::Found {
                 found.notes.push(Finding::new(Code::DecimalComma).at(Place { line: None, ..place }));
             }

@@ -245,16 +245,17 @@ pub(super) fn named(grid: &Grid<'_>) -> Option<Vec<usize>> {
     }
 }
 
-/// The columns named x, y and z, perhaps with a unit, as `x_mm` or `x (m)`.
+/// The columns named x, y and z.
 pub(super) fn axes(grid: &Grid<'_>) -> Option<[usize; 3]> {
-    let axis = |axis: char| {
-        grid.column(|name| {
-            let mut letters = name.chars();
-            letters.next().is_some_and(|first| first.eq_ignore_ascii_case(&axis))
-                && letters.next().is_none_or(|second| !second.is_alphanumeric())
-        })
-    };
+    let axis = |axis: char| grid.column(|name| is_axis_name(name, axis));
     Some([axis('x')?, axis('y')?, axis('z')?])
+}
+
+/// Whether a column is named by this axis, perhaps with a unit, as `x_mm` or `x (m)`.
+pub(super) fn is_axis_name(name: &str, axis: char) -> bool {
+    let mut letters = name.chars();
+    letters.next().is_some_and(|first| first.eq_ignore_ascii_case(&axis))
+        && letters.next().is_none_or(|second| !second.is_alphanumeric())
 }
 
 fn angles_of(grid: &Grid<'_>) -> Option<Places> {

@@ -49,13 +49,15 @@ pub(super) fn role_of(grid: &Grid<'_>) -> Role {
         let more = values_beside(grid, label, &used).next().is_some();
         return if more { Role::ElectrodesAndMaps } else { Role::Electrodes };
     }
-    let Some(label) = label else { return Role::Maps };
+    let Some(label) = label else { return role_without_words(grid) };
     let numeric: Vec<usize> = (0..grid.width())
         .filter(|&column| column != label && !grid.numbers_rows(column, Some(label)) && grid.has_numbers(column))
         .take(4)
         .collect();
     match numeric.as_slice() {
         [] if grid.height() > 1 && is_list(grid, label) => Role::Labels,
+        // A unit or a remark among the variables of a file.
+        [] if grid.height() == 1 && grid.is_words() => Role::Unused,
         [x, y, z, more @ ..] if may_be_axes(grid, [*x, *y, *z]) && is_head(grid, [*x, *y, *z]) => {
             if more.is_empty() {
                 Role::Electrodes
@@ -93,6 +95,15 @@ fn role_of_numbers(grid: &Grid<'_>, part: &str) -> Role {
     }
 }
 
+/// Positions in a table without words, perhaps behind the numbers of the electrodes; else maps.
+fn role_without_words(grid: &Grid<'_>) -> Role {
+    let values: Vec<usize> = (0..grid.width()).filter(|&column| Some(column) != grid.numbered()).take(4).collect();
+    match values.as_slice() {
+        &[x, y, z] if grid.height() > 3 && may_be_axes(grid, [x, y, z]) && is_head(grid, [x, y, z]) => Role::Electrodes,
+        _ => Role::Maps,
+    }
+}
+
 /// Columns of numbers beside positions that can only be maps.
 pub(super) fn values_beside<'g>(
     grid: &'g Grid<'_>,
@@ -110,7 +121,7 @@ pub(super) fn values_beside<'g>(
 }
 
 /// Whether three columns lie about on a sphere of a head's size.
-fn is_head(grid: &Grid<'_>, columns: [usize; 3]) -> bool {
+pub(super) fn is_head(grid: &Grid<'_>, columns: [usize; 3]) -> bool {
     let point = |row: usize| {
         let [x, y, z] = columns.map(|column| grid.number(row, column));
         Some(Vec3::new(x?, y?, z?))
@@ -153,7 +164,11 @@ pub fn role_of_files<'a>(contents: impl IntoIterator<Item = &'a Content> + Clone
         Body::Record(record) => Some(role_of_record(record)),
         _ => None,
     });
-    let roles: Vec<Role> = grids.map(|grid| role_of(&grid)).chain(records).collect();
+    together(&grids.map(|grid| role_of(&grid)).chain(records).collect::<Vec<_>>())
+}
+
+/// What parts with these roles are, taken as a whole.
+pub(super) fn together(roles: &[Role]) -> Role {
     let has = |role: Role| roles.contains(&role);
     match (has(Role::Electrodes), has(Role::Maps)) {
         (true, true) => Role::ElectrodesAndMaps,

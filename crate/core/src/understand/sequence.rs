@@ -2,6 +2,7 @@ use super::grid::Grid;
 use super::{ColumnsAre, Found, MapsAre, TimeUnit, Wishes};
 use crate::finding::{Choice, Code, Error, Finding, Origin};
 use crate::map::Maps;
+use crate::read::number_with_comma;
 use serde::Serialize;
 
 /// When maps were.
@@ -93,10 +94,10 @@ fn named_times(names: &[String]) -> Option<Moments> {
         .iter()
         .map(|name| {
             let name = name.trim().trim_start_matches(['t', 'T']).trim_start_matches(['=', '_', ' ']);
-            let end = name.find(|c: char| !(c.is_ascii_digit() || "+-.eE".contains(c))).unwrap_or(name.len());
+            let end = name.find(|c: char| !(c.is_ascii_digit() || "+-.,eE".contains(c))).unwrap_or(name.len());
             let (number, unit) = name.split_at_checked(end)?;
             units.push(unit.trim().to_ascii_lowercase());
-            number.trim().parse().ok().filter(|time: &f64| time.is_finite())
+            number_with_comma(number.trim()).filter(|time| time.is_finite())
         })
         .collect::<Option<_>>()?;
     let unit = match units.first().map(String::as_str) {
@@ -123,7 +124,8 @@ fn rises(times: &[f64]) -> bool {
 /// Whole numbers, or such beyond ten, are milliseconds: no response lasts ten seconds.
 fn unit_of(times: &[f64]) -> &'static str {
     let largest = times.iter().fold(0.0, |most: f64, time| most.max(time.abs()));
-    let unit = if largest > 10.0 { TimeUnit::Milliseconds } else { TimeUnit::Seconds };
+    let whole = times.iter().all(|time| time.fract() == 0.0);
+    let unit = if largest > 10.0 || whole { TimeUnit::Milliseconds } else { TimeUnit::Seconds };
     unit.symbol()
 }
 
