@@ -479,6 +479,8 @@ def ways():
     sample("values beside the positions", file("beside.tsv", text(beside), "electrodes-and-maps", columns=7), electrodes=None)
     sample("values beside the positions, without a header", file("beside_bare.txt", text(beside[1:], " "), "electrodes-and-maps", columns=7, header=False, delimiter=("blanks", "found")),
            electrodes=None, maps=anonymous)
+    wrong = [[*place[:1], *(one if n == 0 else f"{float(one) * 1.1 + 3:.1f}" for one in place[1:]), *values[1:]] for n, (place, values) in enumerate(zip(place_rows(), map_rows()))]
+    sample("values beside positions, and other positions in a file of their own", maps_file("beside_replaced.tsv", text(wrong), columns=7, passed_over=["x", "y", "z"]), notes=["part-unused"])
     square = [[f"{((7 * row + 3 * column * column) % 23) - 11}" for column in range(21)] for row in range(21)]
     SQUARE = {f"map {n + 1}": [int(row[n]) for row in square] for n in range(21)}
     sample("a square of numbers, which may lie either way", maps_file("square.txt", text(square, " "), columns=21, delimiter=("blanks", "found"), **bare), orientation=("channels-in-rows", "assumed"),
@@ -600,7 +602,7 @@ def unmixings():
     anonymous = [[f"map {n}", name] for n, name in enumerate(NAMES, 1)]
     plain = dict(format="npy", encoding=None, decimal=None, header=False, label=None)
     weights = np.linalg.pinv(UV)
-    told = dict(settings={"mapsAre": "unmixing"}, maps_are=("unmixing", "setting"), columns_are=("components", "setting"), orientation=("channels-in-columns", "found"), tolerance=1e-8)
+    told = dict(settings={"mapsAre": "unmixing"}, maps_are=("unmixing", "setting"), columns_are=("components", "found"), orientation=("channels-in-columns", "found"), tolerance=1e-8)
     sample("an unmixing matrix whose sphering is in it", maps_file("unmixing.npy", npy(weights), rows=3, columns=21, **plain), maps=anonymous, **told,
            notes=["labels-by-order", "unmixing-inverted", "sphering-absent"])
     turn = np.linalg.qr(np.add.outer(np.arange(21.0), np.arange(21.0) ** 2) % 11 - 5.2)[0]

@@ -432,13 +432,18 @@ impl Chosen {
         };
         let numbered = maps_grid.numbered().filter(|_| wordless && electrodes.is_some());
         let read = maps::read_maps(maps_grid, &beside, &known, numbered, wishes, &mut found)?;
-        let maps_columns = std::mem::take(&mut found.columns);
+        let mut maps_columns = std::mem::take(&mut found.columns);
         match columns.iter_mut().find(|(index, _)| *index == self.maps) {
             Some((_, known)) => {
                 known.used.extend(maps_columns.used.into_iter().filter(|(_, meaning)| *meaning == "value"));
                 known.passed_over = maps_columns.passed_over;
             }
-            None => columns.push((self.maps, maps_columns)),
+            None => {
+                // Positions that were replaced.
+                maps_columns.passed_over.extend(&beside);
+                maps_columns.passed_over.sort_unstable();
+                columns.push((self.maps, maps_columns));
+            }
         }
         let maps::Read { mut maps, labelled, named } = read;
         if !named && let Some(at) = names_of_maps(&lists, &maps, labelled) {
