@@ -1,24 +1,12 @@
-//! Real maps and heads, where they lie beside the project: INWARD_OPEN_DATA names their folder. Sources: EEG Database
-//! (H. Begleiter; UCI Machine Learning Repository, 1999; CC BY 4.0), maps computed for this project; electrode
-//! positions from the open BIDS example tables (Wakeman & Henson 2015, Sci Data 2:150001; CC BY 4.0).
+//! Real maps and heads: `data/open/`, whose README names their sources.
+use inward_core::finding::Origin;
 use inward_core::fit::Stopped;
 use inward_core::report::FittedMap;
 use inward_core::{MapReport, Report, Request, Settings, analyse};
-use inward_tests::{Draw, MultiStart, PlainSeries};
-use std::io::Write;
-use std::path::PathBuf;
+use inward_tests::{Draw, MultiStart, PlainSeries, data};
 
-/// A file of the open data; without it the check is skipped, and says so.
-fn open_data(name: &str) -> Option<String> {
-    let beside = PathBuf::from(env!("CARGO_MANIFEST_DIR")).join("../../shared/open");
-    let folder = std::env::var_os("INWARD_OPEN_DATA").map_or(beside, PathBuf::from);
-    let text = std::fs::read_to_string(folder.join(name)).ok();
-    if text.is_none() {
-        // Not by `println`: that is not shown for a test that passes.
-        let _ =
-            writeln!(std::io::stderr(), "SKIPPED: no {name}; INWARD_OPEN_DATA may name the folder of the open data");
-    }
-    text
+fn open_data(name: &str) -> String {
+    data(&format!("open/{name}"))
 }
 
 fn report(electrodes: Option<&str>, maps: &str, exclude: &[&str]) -> Report {
@@ -57,7 +45,7 @@ fn near_dipolar_components_are_as_many_as_a_coarse_grid_finds() {
         ("uci_control_pca20.tsv", &["CZ"], [2, 3, 3]),
     ];
     for (name, exclude, counts) in known {
-        let Some(maps) = open_data(name) else { continue };
+        let maps = open_data(name);
         let report = report(None, &maps, exclude);
         assert_eq!(report.maps.len(), 20);
         assert_eq!(report.electrodes.len(), 61, "{:?}", report.notes);
@@ -75,7 +63,7 @@ fn near_dipolar_components_are_as_many_as_a_coarse_grid_finds() {
 #[test]
 fn real_maps_are_fitted_as_well_as_by_a_dense_search() {
     for name in ["uci_control_ica20.tsv", "uci_second_pca20.tsv"] {
-        let Some(maps) = open_data(name) else { continue };
+        let maps = open_data(name);
         let report = report(None, &maps, &[]);
         let radius = report.head.radius_mm;
         let directions =
@@ -94,35 +82,71 @@ fn real_maps_are_fitted_as_well_as_by_a_dense_search() {
     }
 }
 
+/// A map at each electrode of a table.
+fn noise_at(table: &str) -> String {
+    let labels: Vec<&str> = table.lines().skip(1).map(|line| line.split('\t').next().unwrap()).collect();
+    let noise = Draw::from(1).noise(labels.len());
+    labels.iter().zip(&noise).map(|(label, v)| format!("{label}\t{v}\n")).collect()
+}
+
+/// Settings that were not told by the files, and mattered had they been taken otherwise.
+fn questions(report: &Report) -> Vec<&'static str> {
+    let open = report.understood.choices.iter().filter(|choice| choice.from == Origin::Assumed);
+    open.map(|choice| choice.setting).collect()
+}
+
+fn codes(report: &Report) -> Vec<&'static str> {
+    report.notes.iter().map(|note| note.code.as_str()).collect()
+}
+
 /// Positions measured on people; the files call metres "mm".
 #[test]
-fn measured_heads_are_read_and_fitted() {
-    for (name, radius, rms) in [("sub-01_electrodes.tsv", 92.1, 6.9), ("sub-09_electrodes.tsv", 82.2, 4.8)] {
-        let Some(table) = open_data(name) else { continue };
-        let labels: Vec<&str> = table.lines().skip(1).map(|line| line.split('\t').next().unwrap()).collect();
-        let noise = Draw::from(1).noise(labels.len());
-        let maps: String = labels.iter().zip(&noise).map(|(label, v)| format!("{label}\t{v}\n")).collect();
-        let report = report(Some(&table), &maps, &[]);
+fn measured_heads_are_read_without_a_question_and_fitted() {
+    for (name, radius, rms) in [("sub-01", 92.1, 6.9), ("sub-09", 82.2, 4.8)] {
+        let table = open_data(&format!("{name}_electrodes.tsv"));
+        let coordinates = open_data(&format!("{name}_coordsystem.json"));
+        let maps = noise_at(&table);
+        let alone = report(Some(&table), &maps, &[]);
         println!(
             "{name}: radius {:.2} mm, rms {:.2} mm, largest deviation {:.1} mm",
-            report.head.radius_mm, report.head.fit_rms_mm, report.head.fit_max_mm
+            alone.head.radius_mm, alone.head.fit_rms_mm, alone.head.fit_max_mm
         );
-        assert!((report.head.radius_mm - radius).abs() < 0.06, "{name}: {}", report.head.radius_mm);
-        assert!((report.head.fit_rms_mm - rms).abs() < 0.06, "{name}: {}", report.head.fit_rms_mm);
-        let note = |report: &Report, code: &str| {
-            report.notes.iter().find(|note| note.code.as_str() == code).map(|note| note.message.clone())
-        };
-        let unit = note(&report, "unit-recognised").unwrap();
-        assert!(unit.contains("metres"), "{unit}");
-        // The labels tell no axes; the points of the file of coordinates do, here as rows of the table.
-        assert!(note(&report, "axes-assumed").is_some() && note(&report, "axes-found").is_none());
-        let Some(coordinates) = open_data(&name.replace("electrodes.tsv", "coordsystem.json")) else { continue };
-        let coordinates: serde_json::Value = serde_json::from_str(&coordinates).unwrap();
-        let points = coordinates["AnatomicalLandmarkCoordinates"].as_object().unwrap();
-        let rows: String = points.iter().map(|(label, p)| format!("{label}\t{}\t{}\t{}\n", p[0], p[1], p[2])).collect();
-        let told = self::report(Some(&format!("{}\n{rows}", table.trim_end())), &maps, &[]);
-        let axes = note(&told, "axes-found").unwrap();
-        assert!(axes.contains("ears and nose") && axes.contains("x to the right, y to the front, z up"), "{axes}");
-        assert_eq!(told.maps, report.maps);
+        assert!((alone.head.radius_mm - radius).abs() < 0.06, "{name}: {}", alone.head.radius_mm);
+        assert!((alone.head.fit_rms_mm - rms).abs() < 0.06, "{name}: {}", alone.head.fit_rms_mm);
+        // The labels tell no axes: that is asked, and answered by the description of the coordinates.
+        assert!(codes(&alone).contains(&"axes-assumed") && questions(&alone).contains(&"axes"));
+
+        let files = [("one", table.as_bytes()), ("two", coordinates.as_bytes()), ("three", maps.as_bytes())];
+        for order in [[0, 1, 2], [0, 2, 1], [1, 0, 2], [1, 2, 0], [2, 0, 1], [2, 1, 0]] {
+            let files = order.map(|at: usize| files[at]).to_vec();
+            let told = analyse(&Request { files, ..Request::default() }).unwrap();
+            // One map is a map, whatever belongs to it.
+            assert_eq!(questions(&told), ["mapsAre", "columnsAre"], "{name} {order:?}");
+            let note = |code: &str| told.notes.iter().find(|note| note.code.as_str() == code).unwrap();
+            let unit = note("unit-overruled");
+            assert!(unit.severity == "warning" && unit.message.contains("millimetres"), "{unit:?}");
+            assert!(
+                unit.message.contains("metres") && unit.place.as_ref().unwrap().file.as_deref() == Some("one"),
+                "{unit:?}"
+            );
+            let axes = &note("axes-found").message;
+            assert!(axes.contains("ears and nose") && axes.contains("x to the right, y to the front, z up"), "{axes}");
+            assert!(!codes(&told).contains(&"axes-assumed"));
+            assert_eq!(told.electrodes.len(), 70);
+            assert_eq!(told.maps, alone.maps, "{name} {order:?}");
+        }
+    }
+}
+
+#[test]
+fn computed_maps_are_read_without_a_question() {
+    for name in ["uci_control_ica20.tsv", "uci_control_pca20.tsv", "uci_second_ica20.tsv", "uci_second_pca20.tsv"] {
+        let report =
+            analyse(&Request { files: vec![("a", open_data(name).as_bytes())], ..Request::default() }).unwrap();
+        assert_eq!(questions(&report), ["mapsAre"], "{name}");
+        assert_eq!((report.electrodes.len(), report.maps.len()), (61, 20), "{name}");
+        let labels = &report.understood.labels;
+        assert_eq!((labels.matched, labels.without_position.len(), labels.not_scalp.len()), (61, 0, 0), "{name}");
+        assert_eq!(codes(&report), ["standard-positions", "unit-relative"], "{name}");
     }
 }
