@@ -331,8 +331,8 @@ interface Glue {
 /** The glue's text is put before the worker and the module by the build; each call gives a fresh instance. */
 declare function wasmGlue(): Glue;
 
-/** The engine itself, gzip and base64; put before the module by the build. */
-declare const WASM_GZIP_BASE64: string;
+/** The engine itself, packed; put before the module by the build. */
+declare const WASM_PACKED: string;
 
 /** A study as scripts see it; what stands after `close` is for the page's worker. */
 interface Study {

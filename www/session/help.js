@@ -57,3 +57,8 @@ export function helpFor({ code, message, where }, names) {
 export function isUnreadable(code) {
   return /^(input|array|json)-/.test(code) && HELP[code] === undefined;
 }
+
+/** Whether two tables do not fit each other, each of which may be sound. @param {Fault | null} fault */
+export function isMisfit(fault) {
+  return fault !== null && ["labels-unmatched", "shape-unmatched"].includes(fault.code);
+}

@@ -7,7 +7,7 @@ import { makeStore } from "./store.js";
 import { faultOf } from "../engine/fault.js";
 import { pageFault } from "../text/faults.js";
 import { heldBytes, isEmpty, namedFiles, NO_INPUTS, placedInputs, toldRoles } from "./inputs.js";
-import { isUnreadable } from "./help.js";
+import { isMisfit, isUnreadable } from "./help.js";
 import { differingSettings, firstLine, FIRST_SETTINGS, isOtherTable, sentSettings, settingsForOther } from "./settings.js";
 import { settingsOfFiles, settingsWith, withTurned, withValueAt } from "./settings.js";
 
@@ -131,11 +131,18 @@ export function makeSession() {
     );
   }
 
+  /** Files that were refused, without those that are there. @param {SessionState} state */
+  function refusedFiles({ refused, inputs }) {
+    const known = namedFiles(inputs).map(({ input }) => input);
+    return namedFiles(refused?.inputs ?? NO_INPUTS).filter(({ input }) => !known.includes(input));
+  }
+
   /**
    * Files come in, each to its place; what cannot be read goes to the maps, where reading it says what is wrong.
    * @param {Input[]} given
+   * @param {boolean} [alone] without those that were refused before
    */
-  async function takeIn(given) {
+  async function takeIn(given, alone = true) {
     const before = store.read();
     const { inputs, replaced } = placedInputs(before.example === null ? before.inputs : NO_INPUTS, given);
     exchange(inputs, replaced);
@@ -145,6 +152,12 @@ export function makeSession() {
     const offered = before.settings.mapsAre === "unmixing" && given.length === 1 && given[0] === inputs.maps;
     if (said !== null && offered && last !== null) store.write({ said: { ...said, sphering: given[0] } });
     await ask(before);
+    // Of two tables that belong together, the first to come fits no more than the second, but both may.
+    const { failure, refused } = store.read();
+    if (!alone || refused === null || !isMisfit(failure) || !isMisfit(before.failure)) return;
+    const waiting = refusedFiles(before).map(({ input }) => input);
+    const others = waiting.filter(({ role }) => given.every((input) => input.role !== role));
+    if (others.length > 0) await takeIn([...others, ...given], false);
   }
 
   /**
@@ -156,10 +169,9 @@ export function makeSession() {
   function addAs(path, role, refused) {
     const before = store.read();
     const { inputs: held, example } = before;
-    const known = namedFiles(held).map(({ input }) => input);
-    const given = namedFiles(refused.inputs)
-      .filter(({ input }) => !known.includes(input))
-      .map(({ name, input }) => (name === path[1] && role !== undefined ? { ...input, name, role } : input));
+    const given = refusedFiles(before).map(({ name, input }) =>
+      name === path[1] && role !== undefined ? { ...input, name, role } : input,
+    );
     const { inputs, replaced } = placedInputs(example === null ? held : NO_INPUTS, given);
     exchange(inputs, replaced);
     const { settings } = store.read();

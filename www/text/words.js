@@ -222,6 +222,7 @@ const WORDS = {
   ].join(" "),
 
   "failure.help": "This may help",
+  "failure.other": "If another table belongs to this one, give it next, or both together.",
   "failure.details": "Details to copy",
   "failure.copy": "Copy details",
   "failure.restore": "Back to the settings of the answer",

@@ -1,7 +1,7 @@
 /** What went wrong: a sentence, a next step, and details to copy. */
 
 import { copyText } from "../export/out.js";
-import { helpFor } from "../session/help.js";
+import { helpFor, isMisfit } from "../session/help.js";
 import { namedFiles } from "../session/inputs.js";
 import { detailsText } from "../text/faults.js";
 import { shortName, typeset } from "../text/figures.js";
@@ -118,7 +118,8 @@ export function showFailure(session) {
       need("failure-hint", HTMLElement).textContent = failure?.hint ?? "";
       const kept = need("failure-kept", HTMLElement);
       kept.hidden = state.answer === null;
-      kept.textContent = state.answer === null ? "" : keptText(subjectText(state.answer));
+      const other = state.refused !== null && isMisfit(failure) ? ` ${word("failure.other")}` : "";
+      kept.textContent = state.answer === null ? "" : keptText(subjectText(state.answer)) + other;
       if (failure !== null && !underHands(document.activeElement)) panel.scrollIntoView({ block: "nearest" });
       details.textContent = failure === null ? "" : detailsText(failure, state.program);
     },
