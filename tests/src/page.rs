@@ -162,6 +162,27 @@ impl Page {
         self.press(&format!("{text}{TAB}"));
     }
 
+    /// Chooses an option of a list by its words, as a person does by mouse.
+    pub fn choose(&self, list: &str, words: &str) {
+        let script = "\
+            const list = document.querySelector(arguments[0]);\
+            const option = [...list.options].find((one) => one.text === arguments[1]);\
+            if (!option) return [...list.options].map((one) => one.text).join(' / ');\
+            list.focus(); list.value = option.value;\
+            list.dispatchEvent(new Event('change', { bubbles: true })); return ''";
+        assert_eq!(self.ask(script, &[json!(list), json!(words)]), json!(""), "{list} has {words:?}");
+    }
+
+    /// Whether there is an answer and no map is fitted any more.
+    pub fn rests(&self) -> bool {
+        self.state() == "answered" && !self.visible("#progress")
+    }
+
+    /// How far the document is wider than the window.
+    pub fn overhang(&self) -> Value {
+        self.value("return document.documentElement.scrollWidth - document.documentElement.clientWidth")
+    }
+
     /// Texts of all elements that a selector finds.
     pub fn texts(&self, selector: &str) -> Vec<String> {
         let script = "return [...document.querySelectorAll(arguments[0])].map((e) => e.innerText.trim())";

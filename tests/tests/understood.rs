@@ -18,28 +18,12 @@ fn drop_watch(page: &Page) {
         DroppedFile { name: "watch_maps.tsv", text: &maps() },
         DroppedFile { name: "watch_electrodes.tsv", text: &electrodes() },
     ]);
-    page.until("the cards of the watch", |page| answered(page) && page.exists("[data-file='watch_electrodes.tsv']"));
-}
-
-/// Settled: answered, and no map is fitted any more.
-fn answered(page: &Page) -> bool {
-    page.state() == "answered" && !page.visible("#progress")
+    page.until("the cards of the watch", |page| page.rests() && page.exists("[data-file='watch_electrodes.tsv']"));
 }
 
 /// Value of the row of numbers with a code.
 fn number(page: &Page, code: &str) -> String {
     page.text(&format!("#numbers [data-code={code}] td"))
-}
-
-/// Chooses an option of a list by its words, as a person does by mouse.
-fn choose(page: &Page, list: &str, words: &str) {
-    let script = "\
-        const list = document.querySelector(arguments[0]);\
-        const option = [...list.options].find((one) => one.text === arguments[1]);\
-        if (!option) return [...list.options].map((one) => one.text).join(' / ');\
-        list.focus(); list.value = option.value;\
-        list.dispatchEvent(new Event('change', { bubbles: true })); return ''";
-    assert_eq!(page.ask(script, &[json!(list), json!(words)]), json!(""), "{list} has {words:?}");
 }
 
 /// The positions, maps and labels of `cap.npz` as three files.
@@ -73,7 +57,7 @@ fn binary_files_are_told_apart_in_any_order(page: &Page) {
             page.drop_bytes(&[(name, bytes)]);
         }
         page.until("nineteen electrodes", |page| {
-            answered(page) && page.texts(".card").iter().filter(|card| card.contains("NumPy")).count() == 3
+            page.rests() && page.texts(".card").iter().filter(|card| card.contains("NumPy")).count() == 3
         });
         let report = page.download_report();
         assert_eq!(report["electrodes"].as_array().unwrap().len(), 19);
@@ -87,7 +71,7 @@ fn binary_files_are_told_apart_in_any_order(page: &Page) {
     assert!(seen.iter().all(|maps| *maps == seen[0]), "the order of files does not matter");
     // All of it in one file.
     page.drop_bytes(&[("cap.mat", &sample("cap.mat"))]);
-    page.until("the MATLAB file", |page| answered(page) && page.exists("[data-file='cap.mat']"));
+    page.until("the MATLAB file", |page| page.rests() && page.exists("[data-file='cap.mat']"));
     assert_eq!(page.download_report()["maps"].as_array().unwrap().len(), seen[0].as_array().unwrap().len());
     assert!(!page.text("#subject").contains("standard positions"), "positions stand in the same file");
 }
@@ -152,57 +136,57 @@ fn a_refused_file_is_helped_by_a_setting(page: &Page) {
     assert!(page.visible("#failure-help"), "{}", page.failure_text());
     assert_eq!(page.accessibility_findings(), Vec::<String>::new(), "with help");
     assert_eq!(page.value("return document.querySelector('#maps-name').textContent"), json!("watch_maps.tsv"));
-    choose(page, "#failure-rows [data-setting=orientation] select", "a column for each electrode");
+    page.choose("#failure-rows [data-setting=orientation] select", "a column for each electrode");
     page.until("the refusal again", |page| page.state() == "failed");
     assert_eq!(page.value("return document.querySelector('#maps-name').textContent"), json!("watch_maps.tsv"));
-    choose(page, "#failure-rows [data-setting=role] select", "not needed");
-    page.until("the matrix aside", |page| answered(page) && page.exists("[data-file='matrix.txt']"));
+    page.choose("#failure-rows [data-setting=role] select", "not needed");
+    page.until("the matrix aside", |page| page.rests() && page.exists("[data-file='matrix.txt']"));
     assert!(!page.visible("#failure") && page.exists("[data-file='watch_maps.tsv']"));
     page.click("#undo");
-    page.until("the matrix gone", |page| answered(page) && !page.exists("[data-file='matrix.txt']"));
+    page.until("the matrix gone", |page| page.rests() && !page.exists("[data-file='matrix.txt']"));
 }
 
 fn a_wrong_axis_is_put_right(page: &Page) {
     let before = number(page, "canonical_mm");
-    choose(page, "#set-axes", "x to the front, y to the left, z up");
-    page.until("another position", |page| answered(page) && number(page, "canonical_mm") != before);
+    page.choose("#set-axes", "x to the front, y to the left, z up");
+    page.until("another position", |page| page.rests() && number(page, "canonical_mm") != before);
     let wrong = page.attribute("#preview-above", "aria-label");
     assert!(page.text("#head-card").contains("your setting"));
     assert_eq!(page.value("return document.activeElement.id"), json!("set-axes"), "the list keeps the focus");
     // By keyboard alone: undo outside of text fields.
     page.session().chord(CONTROL, 'z').unwrap();
-    page.until("the position of before", |page| answered(page) && number(page, "canonical_mm") == before);
+    page.until("the position of before", |page| page.rests() && number(page, "canonical_mm") == before);
     assert_ne!(page.attribute("#preview-above", "aria-label"), wrong, "the small head turns with the axes");
     // By keyboard alone: the list, then the button.
     page.focus("#set-axes");
     page.press(DOWN);
     page.press(DOWN);
     page.press(ENTER);
-    page.until("a chosen axis", |page| answered(page) && page.text("#head-card").contains("your setting"));
+    page.until("a chosen axis", |page| page.rests() && page.text("#head-card").contains("your setting"));
     page.focus("#main");
     page.tab_to("#undo");
     while page.text("#undo").contains("axes") {
         page.press(ENTER);
     }
-    page.until("the position of before", |page| answered(page) && number(page, "canonical_mm") == before);
+    page.until("the position of before", |page| page.rests() && number(page, "canonical_mm") == before);
     // Back to what is found by itself.
-    choose(page, "#set-axes", "x to the front, y to the left, z up");
-    page.until("another position", |page| answered(page) && number(page, "canonical_mm") != before);
-    choose(page, "#set-axes", "automatic");
-    page.until("the position of before", |page| answered(page) && number(page, "canonical_mm") == before);
+    page.choose("#set-axes", "x to the front, y to the left, z up");
+    page.until("another position", |page| page.rests() && number(page, "canonical_mm") != before);
+    page.choose("#set-axes", "automatic");
+    page.until("the position of before", |page| page.rests() && number(page, "canonical_mm") == before);
 }
 
 fn settings_of_a_table_go_with_it(page: &Page) {
-    choose(page, "#set-axes", "x to the front, y to the left, z up");
-    page.until("a chosen axis", |page| answered(page) && page.text("#head-card").contains("your setting"));
+    page.choose("#set-axes", "x to the front, y to the left, z up");
+    page.until("a chosen axis", |page| page.rests() && page.text("#head-card").contains("your setting"));
     let changed = electrodes().replace("label\tx\ty\tz", "name\tx\ty\tz");
     page.drop_files(&[DroppedFile { name: "other.tsv", text: &changed }]);
-    page.until("the other table", |page| answered(page) && page.exists("[data-file='other.tsv']"));
+    page.until("the other table", |page| page.rests() && page.exists("[data-file='other.tsv']"));
     let said = page.text("#said");
     assert!(said.contains("watch_electrodes.tsv") && said.contains("axes"), "{said}");
     assert!(!page.text("#head-card").contains("your setting"));
     page.click("#undo");
-    page.until("the table of before", |page| answered(page) && page.exists("[data-file='watch_electrodes.tsv']"));
+    page.until("the table of before", |page| page.rests() && page.exists("[data-file='watch_electrodes.tsv']"));
     assert!(page.text("#head-card").contains("your setting"), "with its settings");
 }
 
@@ -211,9 +195,9 @@ fn fields_of_the_head_card_work(page: &Page) {
         report["electrodes"].as_array().unwrap().iter().filter(|electrode| electrode["used"] == json!(true)).count()
     };
     page.fill("#set-interpolated", "Fp1, Oz");
-    page.until("two electrodes less", |page| answered(page) && electrode_count(&page.download_report()) == 68);
+    page.until("two electrodes less", |page| page.rests() && electrode_count(&page.download_report()) == 68);
     page.click("#set-unusualHead");
-    page.until("the caution", |page| answered(page) && page.text("#notes").contains("standard shells"));
+    page.until("the caution", |page| page.rests() && page.text("#notes").contains("standard shells"));
     // In a text field, the keys that undo are the field's.
     page.ask("document.querySelector('#set-interpolated').focus()", &[]);
     page.session().chord(CONTROL, 'z').unwrap();
@@ -225,7 +209,7 @@ fn a_spreadsheet_is_pasted(page: &Page) {
     let maps = one_map().replace('.', ",");
     page.paste("body", &maps);
     page.until("the pasted map", |page| {
-        answered(page) && page.texts("#cards h3").iter().any(|title| title.contains("pasted maps"))
+        page.rests() && page.texts("#cards h3").iter().any(|title| title.contains("pasted maps"))
     });
     page.click("[data-file='pasted maps'] summary");
     let card = page.text("[data-file='pasted maps']");
@@ -247,23 +231,21 @@ fn hostile_names_are_harmless(page: &Page) {
     let text = format!("{}{label}\t1.5\n", one_map());
     page.drop_files(&[DroppedFile { name: &name, text: &text }]);
     page.until("the map with a hostile name", |page| {
-        answered(page) && page.texts("#cards h3").iter().any(|title| title.contains("<img"))
+        page.rests() && page.texts("#cards h3").iter().any(|title| title.contains("<img"))
     });
     assert_eq!(page.value("return window.bad ?? null"), Value::Null);
     assert!(!page.exists("#cards img") && !page.exists("#cards script"));
     let shown = page.text("main");
     assert!(!shown.contains('\u{202e}'), "nothing turns the writing round");
     assert!(page.text("#cards").len() < 20_000, "long names are shortened");
-    let wide = page.value("return document.documentElement.scrollWidth - document.documentElement.clientWidth");
-    assert_eq!(wide, json!(0));
+    assert_eq!(page.overhang(), json!(0));
 }
 
 fn it_fits_and_is_accessible(page: &Page) {
     drop_watch(page);
     assert_eq!(page.accessibility_findings(), Vec::<String>::new());
     page.session().resize(480, 900).unwrap();
-    let wide = page.value("return document.documentElement.scrollWidth - document.documentElement.clientWidth");
-    assert_eq!(wide, json!(0));
+    assert_eq!(page.overhang(), json!(0));
 }
 
 fn further_files_are_picked_listed_and_removed(page: &Page) {
@@ -276,7 +258,7 @@ fn further_files_are_picked_listed_and_removed(page: &Page) {
     let channels = format!("name\ttype\tunits\tstatus\n{}", rows.replacen("good", "bad", 1));
     page.value("if (document.querySelector('#intake-body').hidden) document.querySelector('#fold').click()");
     page.pick("#any-files", &folder.write("channels.tsv", channels));
-    page.until("the channels", |page| answered(page) && page.exists("[data-file='channels.tsv']"));
+    page.until("the channels", |page| page.rests() && page.exists("[data-file='channels.tsv']"));
     page.value("if (document.querySelector('#intake-body').hidden) document.querySelector('#fold').click()");
     let listed = page.text("#others");
     assert!(listed.contains("channels.tsv") && listed.contains("table of channels"), "{listed}");
@@ -284,7 +266,7 @@ fn further_files_are_picked_listed_and_removed(page: &Page) {
     page.focus("#any-files");
     page.tab_to("#unit input");
     page.click("#others button");
-    page.until("the channels gone", |page| answered(page) && !page.exists("[data-file='channels.tsv']"));
+    page.until("the channels gone", |page| page.rests() && !page.exists("[data-file='channels.tsv']"));
 }
 
 fn files_are_understood_and_put_right(browser: Browser) {

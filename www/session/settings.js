@@ -18,8 +18,10 @@ export function sentSettings(settings, told) {
   const { exclude, flip, polarity, activationSd, ...sent } = settings;
   /** @type {EngineSettings} */
   const request = sent;
-  const files = { ...settings.files };
-  for (const [name, wishes] of Object.entries(told)) files[name] = { ...wishes, ...files[name] };
+  /** @type {Record<string, FileSettings>} */
+  let files = { ...settings.files };
+  // A file may have any name, `__proto__` too.
+  for (const [name, wishes] of Object.entries(told)) files = { ...files, [name]: { ...wishes, ...files[name] } };
   if (Object.keys(files).length > 0) request.files = files;
   if (exclude.length > 0) request.exclude = exclude;
   if (flip.length > 0) request.flip = flip;
