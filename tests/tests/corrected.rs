@@ -288,7 +288,8 @@ fn a_sphering_matrix_is_asked_for(page: &Page) {
         assert!(is_right(page) && !page.text("#answer").contains("No sphering matrix"));
         assert!(!page.exists("#sphering-file"), "asked no more");
     };
-    page.pick("#sphering-file", &Folder::fresh("sphering").write("sphering.txt", &sphering));
+    let folder = Folder::fresh("sphering");
+    page.pick("#sphering-file", &folder.write("sphering.txt", &sphering));
     taken(page);
     page.click("#undo");
     page.until("one matrix", |page| page.rests() && page.exists("#sphering-file"));

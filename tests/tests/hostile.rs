@@ -107,15 +107,12 @@ fn whatever_names_are_they_are_text(page: &Page) {
     let before = page.text("#sentence");
     let long = "L".repeat(10_000);
     let names = [
-        "<script>window.bad=1</script>",
         "<img src=x onerror=window.bad=1>",
-        "\"><svg onload=window.bad=1>",
+        "\"><script>window.bad=1</script>",
         "&lt;b&gt;bold&lt;/b&gt;",
         "\u{202e}gpj.exe\u{2066}\u{200f}",
         "nul\0bell\u{7}",
         "__proto__",
-        "constructor",
-        "'; drop --\\",
         &long,
     ];
     let rows: Vec<(String, String)> = example("lamp.tsv")
