@@ -60,8 +60,8 @@ pub(super) struct Delimited {
     pub title: Option<(usize, usize)>,
 }
 
-/// Splits text into rows and fields, by what is wished or by what stands in every one of the first twenty lines: a tab,
-/// a semicolon, a comma that is not the decimal mark of every number, otherwise blanks. Lines may end in LF, CR or both. Empty lines
+/// Splits text into rows and fields, by what is wished or by what divides every one of the first twenty lines: a tab,
+/// a semicolon, a comma that is not the decimal mark of most numbers, otherwise blanks. Lines may end in LF, CR or both. Empty lines
 /// and lines that begin with `#` or `%` are passed over, unless the last one before the table holds the names of the
 /// columns. Quoted fields may hold any of these marks, line breaks and doubled quotes.
 ///
@@ -172,26 +172,50 @@ pub fn has_decimal_comma(field: &str) -> bool {
 }
 
 fn sniffed(text: &str) -> Delimiter {
+    let [tab, semicolon, comma, blanks, ..] = Delimiter::ALL;
     let sample = |delimiter| Rows::split(text, delimiter, SAMPLE).unwrap_or_default();
-    let divides = |delimiter: &Delimiter| {
-        let rows = sample(*delimiter);
-        let titles = rows.titles();
-        !rows.counts.is_empty() && rows.counts.iter().skip(titles).all(|&count| count > 1)
+    let counts = |rows: &Rows| rows.counts.iter().skip(rows.titles()).copied().collect::<Vec<_>>();
+    let even = |rows: &Rows| counts(rows).windows(2).all(|pair| pair.first() == pair.last());
+    let widest = |rows: &Rows| counts(rows).into_iter().max().unwrap_or(0);
+    let divided = |delimiter| {
+        let rows = sample(delimiter);
+        let counts = counts(&rows);
+        (!counts.is_empty() && counts.iter().all(|&count| count > 1)).then_some((delimiter, rows))
     };
-    let [tab, semicolon, comma, ..] = Delimiter::ALL;
-    let found = [tab, semicolon, comma].into_iter().find(divides).unwrap_or(Delimiter::Blanks);
-    if found != comma {
-        return found;
+    // The first mark that divides every line, unless another one divides them evenly into more, if the first does not, or
+    // into more than twice as many; one after which quotes hold together what stands between them before one that tears it.
+    let mut found: Option<(Delimiter, Rows)> = None;
+    for (delimiter, rows) in [tab, semicolon, comma, blanks].into_iter().filter_map(divided) {
+        let better = found.as_ref().is_none_or(|(_, known)| {
+            known.stray && !rows.stray
+                || delimiter != blanks && even(&rows) && widest(&rows) > widest(known) * if even(known) { 2 } else { 1 }
+        });
+        if better {
+            found = Some((delimiter, rows));
+        }
     }
-    // One number in each line may also have a decimal comma, unless what stands before it counts the lines.
-    let blanks = sample(Delimiter::Blanks);
+    let (delimiter, commas) = found.unwrap_or((blanks, Rows::default()));
+    if delimiter != comma {
+        return delimiter;
+    }
+    // Commas may be decimal marks between blanks, or of one number in each line unless what stands before them counts the
+    // lines. Names in the first line tell nothing of that.
+    let apart = sample(blanks);
+    let names = usize::from(apart.counts.len() > 1);
     let whole = |row: &str| number(row.split(',').next().unwrap_or_default());
-    let before: Vec<Option<f64>> = blanks.fields().map(|(_, field)| whole(field)).collect();
+    let before: Vec<Option<f64>> = apart.fields().map(|(_, field)| whole(field)).collect();
     let counted = before.windows(2).all(|pair| matches!(pair, [Some(one), Some(next)] if *next == one + 1.0));
-    let wide =
-        blanks.counts.iter().all(|&count| count > 1) || blanks.counts.iter().all(|&count| count == 1) && !counted;
-    let mut with_comma = blanks.fields().map(|(_, field)| field).filter(|field| field.contains(','));
-    if wide && with_comma.all(has_decimal_comma) { Delimiter::Blanks } else { found }
+    let below = || apart.counts.iter().skip(names);
+    let may_be = below().all(|&count| count > 1) || below().all(|&count| count == 1) && !counted;
+    let is_decimal = |field: &&str| has_decimal_comma(field) && !field.ends_with(',');
+    let with_comma = || apart.fields().filter(|(row, field)| *row >= names && field.contains(',')).map(|(_, f)| f);
+    let (decimals, all) = (with_comma().filter(is_decimal).count(), with_comma().count());
+    let are = match (even(&commas), even(&apart)) {
+        (true, true) => decimals == all,
+        (true, false) => 4 * decimals >= 3 * all && decimals >= 2 * below().count(),
+        (false, _) => 4 * decimals >= 3 * all,
+    };
+    if may_be && are { blanks } else { delimiter }
 }
 
 /// Rows of any number of fields, which stand one behind another in one string.
@@ -203,6 +227,8 @@ struct Rows {
     lines: Vec<u32>,
     /// The last line passed over before the first row, without its mark.
     remark: Option<(usize, String)>,
+    /// Whether more than the mark followed a quoted field.
+    stray: bool,
 }
 
 impl Rows {
@@ -312,7 +338,10 @@ impl Rows {
             match (field.is_empty(), tail.is_empty()) {
                 (true, _) => self.field(tail),
                 (false, true) => self.field(&field),
-                (false, false) => self.field(&[&*field, tail].concat()),
+                (false, false) => {
+                    self.stray = true;
+                    self.field(&[&*field, tail].concat());
+                }
             }
             at += length;
             match rest.get(length..).and_then(|rest| rest.chars().next()) {
@@ -512,9 +541,7 @@ fn in_columns(text: &str) -> Option<Rows> {
         }
         column += run.len();
     }
-    // Evident only where most lines fill all columns.
-    let full = lines().skip(1).filter(|(_, line)| line.split_whitespace().count() == starts.len()).count();
-    if starts.len() < 2 || 2 * full < lines().count() {
+    if starts.len() < 2 {
         return None;
     }
     let mut rows = Rows::default();
@@ -530,7 +557,15 @@ fn in_columns(text: &str) -> Option<Rows> {
         rows.counts.push(u32::try_from(starts.len()).ok()?);
         rows.lines.push(u32::try_from(line + 1).ok()?);
     }
-    Some(rows)
+    // Evident only where most lines fill all columns, with blanks within one field at most.
+    let mut loose = vec![0; rows.counts.len()];
+    for (row, field) in rows.fields() {
+        if let Some(loose) = loose.get_mut(row) {
+            *loose += if field.is_empty() { 2 } else { usize::from(field.contains(char::is_whitespace)) };
+        }
+    }
+    let full = loose.iter().skip(1).filter(|loose| **loose < 2).count();
+    (2 * full >= rows.counts.len()).then_some(rows)
 }
 
 #[cfg(test)]

@@ -174,6 +174,11 @@ impl<'a> Grid<'a> {
         matches!(self.body, Fields::Numbers(_))
     }
 
+    /// Name of the part, without that of what it stands in.
+    pub fn inner_name(&self) -> &str {
+        self.part.map_or("", |part| part.rsplit('.').next().unwrap_or(part))
+    }
+
     /// Whether it is a list of words.
     pub fn is_words(&self) -> bool {
         matches!(&self.body, Fields::Columns(columns) if matches!(columns.as_slice(), [Column::Words(_)]))

@@ -27,7 +27,7 @@ use crate::math::Vec3;
 use crate::read::{Body, Content, Encoding, Format, Record};
 use grid::{Grid, Header};
 use serde::Serialize;
-use std::collections::HashMap;
+use std::collections::{HashMap, HashSet};
 
 /// A file with its name and what was read of it.
 #[derive(Clone, Debug, PartialEq)]
@@ -266,6 +266,9 @@ fn chosen_part<'a>(mut roles: Vec<(Grid<'a>, Role)>, part: Option<&str>) -> Vec<
     roles
 }
 
+/// Fewest rows whose first columns are positions beyond doubt if they lie on a head and have no names.
+const SURELY_PLACED: usize = 19;
+
 /// The grids that are read, by their numbers.
 #[derive(Debug, Default)]
 struct Chosen {
@@ -292,11 +295,25 @@ impl Chosen {
             numbered.filter(|(_, (_, role))| roles.contains(role)).map(|(index, _)| index).collect()
         };
         // Values beside positions are maps unless there are maps, and the positions count unless others are given apart.
-        let both = with(grids, &[Role::ElectrodesAndMaps]);
+        // A few values without names may lie like a head by chance.
+        let few = |grid: &Grid<'_>| grid.height() < SURELY_PLACED && positions::named(grid).is_none();
+        let both: Vec<usize> = with(grids, &[Role::ElectrodesAndMaps])
+            .into_iter()
+            .filter(|&index| grids.get(index).is_some_and(|(grid, _)| !few(grid)))
+            .collect();
         let replaced = with(grids, &[Role::Maps]).is_empty() && !with(grids, &[Role::Electrodes]).is_empty();
         if replaced || !with(grids, &[Role::Maps]).is_empty() {
             for (_, role) in grids.iter_mut().filter(|(_, role)| *role == Role::ElectrodesAndMaps) {
                 *role = if replaced { Role::Maps } else { Role::Electrodes };
+            }
+        }
+        // What only looks like positions holds maps where other positions are named and there are no maps.
+        if with(grids, &[Role::Maps, Role::ElectrodesAndMaps]).is_empty() {
+            let named = |grid: &Grid<'_>| positions::named(grid).is_some();
+            let of_electrodes = grids.iter_mut().filter(|(_, role)| *role == Role::Electrodes);
+            let (sure, likely): (Vec<_>, Vec<_>) = of_electrodes.partition(|(grid, _)| named(grid));
+            if !sure.is_empty() {
+                likely.into_iter().for_each(|(_, role)| *role = Role::Maps);
             }
         }
         let counts: Vec<usize> = with(grids, &[Role::Electrodes, Role::ElectrodesAndMaps, Role::Labels])
@@ -392,20 +409,17 @@ impl Chosen {
             columns.push((self.electrodes.unwrap_or_default(), std::mem::take(&mut found.columns)));
             electrodes = Some((read, label.is_some(), electrode_grid));
         }
-        let mut lists: Vec<Vec<Label>> = self
-            .labels
-            .iter()
-            .filter_map(|&index| grid(index))
-            .map(|grid| labels_of(grid, wishes, &found))
-            .collect::<Result<_, _>>()?;
-        for (&index, _) in self.labels.iter().zip(&lists) {
-            let label = grid(index).and_then(Grid::label_column);
-            columns.push((index, Columns::new(label, Vec::new())));
+        let mut lists: Vec<(&Grid<'_>, Vec<Label>)> = Vec::new();
+        for (&index, grid) in self.labels.iter().filter_map(|index| Some((index, grid(*index)?))) {
+            lists.push((grid, labels_of(grid, wishes, &found)?));
+            columns.push((index, Columns::new(grid.label_column(), Vec::new())));
         }
+        let labels_known = electrodes.as_ref().filter(|(_, labelled, _)| *labelled).map(|(read, _, _)| read.as_slice());
+        let list = list_of_electrodes(&lists, labels_known, maps_grid).map(|at| lists.swap_remove(at));
         // Positions without labels take those of a list as long as they are.
         let mut by_order = Vec::new();
         if let Some((read, false, electrode_grid)) = &mut electrodes
-            && let Some(list) = lists.iter().find(|list| list.len() == read.len())
+            && let Some((_, list)) = list.as_ref().filter(|(_, list)| list.len() == read.len())
         {
             read.iter_mut().zip(list).for_each(|(electrode, label)| electrode.label = label.clone());
             by_order.push(electrode_grid.file);
@@ -414,9 +428,9 @@ impl Chosen {
             let numbers = (1..).map(|number: usize| Label::new(&number.to_string()));
             read.iter_mut().zip(numbers).for_each(|(electrode, number)| electrode.label = number);
         }
-        let known: Vec<Vec<Label>> = lists
+        let known: Vec<Vec<Label>> = list
             .iter()
-            .cloned()
+            .map(|(_, list)| list.clone())
             .chain(electrodes.iter().map(|(read, _, _)| read.iter().map(|e| e.label.clone()).collect()))
             .collect();
         let beside = if self.electrodes == Some(self.maps) {
@@ -446,8 +460,8 @@ impl Chosen {
             }
         }
         let maps::Read { mut maps, labelled, named } = read;
-        if !named && let Some(at) = names_of_maps(&lists, &maps, labelled) {
-            maps.names = lists.remove(at).iter().map(Label::to_string).collect();
+        if let Some((_, names)) = lists.iter().find(|(_, list)| !named && list.len() == maps.names.len()) {
+            maps.names = names.iter().map(Label::to_string).collect();
         }
         if let Some((read, false, electrode_grid)) = &mut electrodes
             && read.iter().all(|electrode| electrode.label.as_str().is_empty())
@@ -494,13 +508,15 @@ impl Chosen {
         let described = coordinates::read_coordinates(records, &mut found);
         let electrodes = electrodes.map(|(read, _, _)| read).or_else(|| {
             // A list of labels alone names the electrodes, if it is not the list of a matrix.
-            let list = lists.into_iter().next().filter(|_| labelled)?;
-            let line =
-                |row: usize| self.labels.first().and_then(|&index| grid(index)).map_or(row + 1, |grid| grid.line(row));
-            let numbered = list.into_iter().enumerate();
-            Some(numbered.map(|(row, label)| Electrode { label, position: None, line: line(row) }).collect())
+            let (grid, list) = list.as_ref().filter(|_| labelled)?;
+            let electrode = |(row, label): (usize, &Label)| Electrode {
+                label: label.clone(),
+                position: None,
+                line: grid.line(row),
+            };
+            Some(list.iter().enumerate().map(electrode).collect())
         });
-        let electrode_grid = self.electrodes.or(self.labels.first().copied()).and_then(grid);
+        let electrode_grid = self.electrodes.and_then(grid).or(list.as_ref().map(|(grid, _)| *grid));
         if let (Some(electrodes), Some(electrode_grid)) = (&electrodes, electrode_grid) {
             refuse_duplicates(&found.place("electrodes", electrode_grid), electrodes)?;
         }
@@ -525,12 +541,26 @@ impl Chosen {
     }
 }
 
-/// The list of words that names the maps: as long as there are maps, not of sites, and not the one that names the electrodes.
-fn names_of_maps(lists: &[Vec<Label>], maps: &Maps, labelled: bool) -> Option<usize> {
-    let site = |label: &&Label| matches!(LabelReading::of(label).kind, LabelKind::Site(_));
-    let of_electrodes = lists.iter().position(|list| !labelled && list.len() == maps.labels.len());
-    let fits = |list: &Vec<Label>| list.len() == maps.names.len() && 2 * list.iter().filter(site).count() < list.len();
-    (0..lists.len()).find(|at| Some(*at) != of_electrodes && lists.get(*at).is_some_and(fits))
+/// The list of words that names the electrodes: the one with most sites and labels of the table of electrodes, else the one
+/// whose name says so, else the longest. Others may name the maps, and so may the only one, where it has no label of the
+/// table and only the other side of the maps is as long as that.
+fn list_of_electrodes(
+    lists: &[(&Grid<'_>, Vec<Label>)],
+    electrodes: Option<&[Electrode]>,
+    maps: &Grid<'_>,
+) -> Option<usize> {
+    let keys: HashSet<String> = electrodes.into_iter().flatten().map(|electrode| electrode.label.key()).collect();
+    let is_known =
+        |label: &&Label| keys.contains(&label.key()) || matches!(LabelReading::of(label).kind, LabelKind::Site(_));
+    let likely = |(grid, list): &(&Grid<'_>, Vec<Label>)| {
+        let name = grid.inner_name().to_ascii_lowercase();
+        let says = ["label", "chan", "elec", "site", "sens"].iter().any(|begin| name.starts_with(begin));
+        (list.iter().filter(is_known).count(), says, list.len())
+    };
+    let (best, (known, _, length)) = lists.iter().map(likely).enumerate().rev().max_by_key(|(_, likely)| *likely)?;
+    let sides = [maps.height(), maps.width()];
+    let of_maps = |count: usize| count != length && sides.contains(&length) && sides.contains(&count);
+    (known > 0 || !electrodes.is_some_and(|electrodes| of_maps(electrodes.len()))).then_some(best)
 }
 
 /// A label may stand once, unless it names no electrode of the scalp.
