@@ -308,6 +308,8 @@ fn a_sphering_matrix_is_asked_for(page: &Page) {
 
 /// Of two other tables the first fits no more than the second, but both may; values beside positions need no question.
 fn tables_come_one_after_the_other(page: &Page) {
+    page.drop_files(&[DroppedFile { name: "first.tsv", text: &example("watch_electrodes.tsv") }]);
+    page.until("the next step", |page| page.text("#status").contains("first.tsv (electrodes). Now give a map"));
     drop_two(page, &example("watch_maps.tsv"), &example("watch_electrodes.tsv"));
     let before = page.text("#sentence");
     page.drop_files(&[DroppedFile { name: "others.tsv", text: &electrodes(numbered, |place| place) }]);

@@ -58,7 +58,6 @@ const WORDS = {
 
   "state.loading": "Starting the engine",
   "state.ready": "Ready for a map",
-  "state.waiting": "Electrodes are in; now the map",
   "state.busy": "Computing",
   "state.answered": "Answered",
   "state.failed": "That did not work",
@@ -386,6 +385,12 @@ const ROLE_NAMES = {
 /** @param {FileRole} role */
 export function roleText(role) {
   return ROLE_NAMES[role];
+}
+
+/** What is in while the map is missing. @param {{ name: string, input: Input }[]} files */
+export function waitingText(files) {
+  const known = files.map(({ name, input }) => `${shortName(name)} (${roleText(input.role ?? "electrodes")})`);
+  return `Read: ${known.join(", ")}. Now give a map: paste it, drop it, or pick a file.`;
 }
 
 /** @type {Record<string, string>} */

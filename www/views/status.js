@@ -1,15 +1,21 @@
 /** One line on what the page is at, with progress and a way to stop. */
 
-import { progressText, word } from "../text/words.js";
+import { isEmpty, namedFiles } from "../session/inputs.js";
+import { progressText, waitingText, word } from "../text/words.js";
 import { need } from "./element.js";
 
 /** @import { Session } from "../session/session.js" */
+
+/** Files are in, and no map. @param {SessionState} state */
+function isWaiting({ phase, inputs, progress, stopped }) {
+  return phase === "ready" && progress === null && !stopped && !isEmpty(inputs);
+}
 
 /** @param {SessionState} state */
 function statusText(state) {
   if (state.progress !== null) return progressText(state.progress.done, state.progress.total);
   if (state.stopped) return word("state.stopped");
-  if (state.phase === "ready" && state.inputs.electrodes !== null) return word("state.waiting");
+  if (isWaiting(state)) return waitingText(namedFiles(state.inputs));
   return word(`state.${state.phase}`);
 }
 
@@ -53,6 +59,8 @@ export function showStatus(session) {
     // Counts change many times a second; a screen reader hears of the beginning and the end.
     status.setAttribute("aria-live", state.progress === null ? "polite" : "off");
     if (status.textContent !== text) status.textContent = text;
+    // Without an answer yet, this is all that tells of tables that are in.
+    status.classList.toggle("small", !isWaiting(state));
     status.classList.toggle("unseen", state.phase === "answered" && !working && !state.stopped);
     cancel.hidden = !working;
     progress.hidden = !working;

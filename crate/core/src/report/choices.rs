@@ -166,7 +166,7 @@ pub fn option_label(setting: &str, value: &Value, own: Option<&str>) -> String {
     let words = match (setting, text.as_str()) {
         ("role", "electrodes") => "electrodes",
         ("role", "maps") => "maps",
-        ("role", "electrodes-and-maps") => "electrodes and maps in one table",
+        ("role", "electrodes-and-maps") => "electrodes and maps together",
         ("role", "labels") => "a list of labels",
         ("role", "channels") => "a table of channels",
         ("role", "coordinates") => "a description of coordinates",

@@ -15,6 +15,10 @@ pub fn message(finding: &Finding) -> String {
         Some(Value::List(list)) => listed(list),
         Some(Value::Flag(flag)) => if *flag { "yes" } else { "no" }.into(),
     };
+    let counted = |name: &str, noun: &str| match value(name).as_str() {
+        "1" => format!("1 {noun}"),
+        count => format!("{count} {noun}s"),
+    };
     let place = finding.place.as_ref();
     let line = place.and_then(|p| p.line).unwrap_or(1);
     let byte = place.and_then(|p| p.byte).unwrap_or(1);
@@ -72,7 +76,7 @@ pub fn message(finding: &Finding) -> String {
         ),
         Code::TableColumns => format!("The {input} lacks {} (line {line}).", value("lacks")),
         Code::TableRagged => {
-            format!("Line {line} of the {input} has {} fields, most lines have {}.", value("found"), value("expected"))
+            format!("Line {line} of the {input} has {}, most lines have {}.", counted("found", "field"), value("expected"))
         }
         Code::TableLarge => format!(
             "Line {line} of the {input}: at least {} rows or columns; tables of up to {} maps are read.",
@@ -92,15 +96,15 @@ pub fn message(finding: &Finding) -> String {
         },
         Code::FilesSeveral => format!("Several files hold {}: {}.", role(&value("role")), value("files")),
         Code::ShapeUnmatched => format!(
-            "The {input} has {} rows and {} columns without labels; neither side is as long as the labels known, which are {}.",
-            value("rows"),
-            value("columns"),
+            "The {input} has {} and {} without labels; neither side is as long as the labels known, which are {}.",
+            counted("rows", "row"),
+            counted("columns", "column"),
             value("labels")
         ),
         Code::ColumnUnknown => format!(
-            "The {input} has no column “{}”; it has {} columns{}.",
+            "The {input} has no column “{}”; it has {}{}.",
             value("column"),
-            value("width"),
+            counted("width", "column"),
             match value("known").as_str() {
                 "" => String::new(),
                 known => format!(": {known}"),
@@ -301,8 +305,8 @@ pub fn message(finding: &Finding) -> String {
             if value("radius") == "yes" { ", at the distance given" } else { "" }
         ),
         Code::LabelsByOrder => format!(
-            "The {} rows of numbers in the {input} have no labels; they were taken in the order of the labels known.",
-            value("count")
+            "The values for {} in the {input} have no labels; they were taken in the order of the labels known.",
+            counted("count", "electrode")
         ),
         Code::OrientationAssumed => format!(
             "The {input} is square, {} by {}: each {} was taken as an electrode.",
@@ -319,11 +323,11 @@ pub fn message(finding: &Finding) -> String {
             "No sphering matrix was given: if the unmixing was kept apart from it, these maps are wrong.".into()
         }
         Code::BaselineSubtracted => format!(
-            "The mean from {} to {} {} was subtracted at each electrode ({} maps).",
+            "The mean from {} to {} {} was subtracted at each electrode ({}).",
             value("from"),
             value("to"),
             value("unit"),
-            value("maps")
+            counted("maps", "map")
         ),
         Code::HeaderAssumed => format!("The first line of the {input} was taken as the names of its columns."),
         Code::UnitRecognised => format!(

@@ -477,6 +477,7 @@ impl Chosen {
         if !labelled {
             by_order.push(maps_grid.file);
         }
+        by_order.dedup();
         for file in by_order {
             let place = Place { file: found.given_name(file), ..Place::input("maps") };
             found.notes.push(Finding::new(Code::LabelsByOrder).at(place).with("count", maps.labels.len()));
