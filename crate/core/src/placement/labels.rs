@@ -89,11 +89,12 @@ pub(super) fn match_labels(
     let positioned =
         |label: &Label| index.exact(label).is_some_and(|i| electrodes.get(i).is_some_and(|e| e.position.is_some()));
 
+    let keys = |labels: &[Label]| labels.iter().map(Label::key).collect::<BTreeSet<_>>();
+    let (scalp, others) = (keys(&wishes.scalp), keys(&wishes.other_channels));
     let mut rows = Vec::new();
     for (row, (label, reading)) in maps.labels.iter().zip(&names.readings).enumerate() {
-        if !wishes.scalp.contains(label)
-            && (wishes.other_channels.contains(label) || off_scalp(reading, positioned(label)))
-        {
+        let key = label.key();
+        if !scalp.contains(&key) && (others.contains(&key) || off_scalp(reading, positioned(label))) {
             found.not_scalp.push(label.to_string());
         } else if maps.values.row(row).iter().all(|value| value.is_nan()) {
             if table.is_none() {

@@ -339,7 +339,8 @@ fn leave_out(electrodes: &mut [Placed], wishes: &Wishes, found: &mut LabelsFound
     for (code, labels) in lists {
         let mut named: Vec<String> = Vec::new();
         for label in labels {
-            let exactly = |e: &&mut Placed| e.keys.iter().take(2).any(|key| *key == label.key());
+            let own = label.key();
+            let exactly = |e: &&mut Placed| e.keys.iter().take(2).any(|key| *key == own);
             let loose = labels::loose_keys(&Reading::of(label));
             let loosely = |e: &&mut Placed| loose.iter().any(|key| e.keys.contains(key));
             let exact = electrodes.iter_mut().any(|e| exactly(&e));

@@ -175,26 +175,27 @@ fn sniffed(text: &str) -> Delimiter {
     let [tab, semicolon, comma, blanks, ..] = Delimiter::ALL;
     let sample = |delimiter| Rows::split(text, delimiter, SAMPLE).unwrap_or_default();
     let counts = |rows: &Rows| rows.counts.iter().skip(rows.titles()).copied().collect::<Vec<_>>();
-    let even = |rows: &Rows| counts(rows).windows(2).all(|pair| pair.first() == pair.last());
-    let widest = |rows: &Rows| counts(rows).into_iter().max().unwrap_or(0);
-    let divided = |delimiter| {
-        let rows = sample(delimiter);
-        let counts = counts(&rows);
-        (!counts.is_empty() && counts.iter().all(|&count| count > 1)).then_some((delimiter, rows))
-    };
+    let even = |counts: &[u32]| counts.windows(2).all(|pair| pair.first() == pair.last());
     // The first mark that divides every line, unless another one divides them evenly into more, if the first does not, or
     // into more than twice as many; one after which quotes hold together what stands between them before one that tears it.
-    let mut found: Option<(Delimiter, Rows)> = None;
-    for (delimiter, rows) in [tab, semicolon, comma, blanks].into_iter().filter_map(divided) {
-        let better = found.as_ref().is_none_or(|(_, known)| {
-            known.stray && !rows.stray
-                || delimiter != blanks && even(&rows) && widest(&rows) > widest(known) * if even(known) { 2 } else { 1 }
+    // Wide lines are long: one way of dividing them is held at a time.
+    let mut found: Option<(Delimiter, bool, Vec<u32>)> = None;
+    for delimiter in [tab, semicolon, comma, blanks] {
+        let rows = sample(delimiter);
+        let (stray, counts) = (rows.stray, counts(&rows));
+        if counts.is_empty() || counts.contains(&1) || counts.contains(&0) {
+            continue;
+        }
+        let better = found.as_ref().is_none_or(|(_, torn, known)| {
+            let times = if even(known) { 2 } else { 1 };
+            let more = counts.iter().max() > known.iter().max().map(|most| most * times).as_ref();
+            *torn && !stray || delimiter != blanks && even(&counts) && more
         });
         if better {
-            found = Some((delimiter, rows));
+            found = Some((delimiter, stray, counts));
         }
     }
-    let (delimiter, commas) = found.unwrap_or((blanks, Rows::default()));
+    let (delimiter, _, commas) = found.unwrap_or((blanks, false, Vec::new()));
     if delimiter != comma {
         return delimiter;
     }
@@ -210,7 +211,7 @@ fn sniffed(text: &str) -> Delimiter {
     let is_decimal = |field: &&str| has_decimal_comma(field) && !field.ends_with(',');
     let with_comma = || apart.fields().filter(|(row, field)| *row >= names && field.contains(',')).map(|(_, f)| f);
     let (decimals, all) = (with_comma().filter(is_decimal).count(), with_comma().count());
-    let are = match (even(&commas), even(&apart)) {
+    let are = match (even(&commas), even(&counts(&apart))) {
         (true, true) => decimals == all,
         (true, false) => 4 * decimals >= 3 * all && decimals >= 2 * below().count(),
         (false, _) => 4 * decimals >= 3 * all,

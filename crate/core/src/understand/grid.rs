@@ -8,6 +8,7 @@ use crate::read::{
 };
 use core::ops::Range;
 use ndarray::ArrayView2;
+use std::collections::HashMap;
 
 /// Rows that are looked at to find words.
 const SAMPLE: usize = 64;
@@ -20,7 +21,7 @@ pub(super) struct Grid<'a> {
     /// Name of the part.
     pub part: Option<&'a str>,
     body: Fields<'a>,
-    /// Names of the columns; empty where they have none.
+    /// Names of the columns that do not stand in a row above them.
     names: Vec<String>,
     pub header: Header,
     pub decimal: Option<(Decimal, Origin)>,
@@ -58,42 +59,34 @@ impl<'a> Grid<'a> {
     /// The grids of a file. Columns that its format keeps apart, words and vectors of one length and one outer name, are
     /// put side by side again.
     pub fn of(file: usize, parts: &'a [Part], decimal: Option<Decimal>) -> Vec<Self> {
-        let mut grids: Vec<Self> = Vec::new();
-        let mut grouped: Vec<usize> = Vec::new();
-        for (index, part) in parts.iter().enumerate() {
-            if grouped.contains(&index) {
-                continue;
+        let mut together: HashMap<(Option<&str>, usize), Vec<&'a Part>> = HashMap::new();
+        for part in parts {
+            if let Some(key) = beside_key(part) {
+                together.entry(key).or_default().push(part);
             }
-            let alike: Vec<usize> = (index..parts.len())
-                .filter(|&other| parts.get(other).is_some_and(|other| goes_beside(part, other)))
-                .collect();
-            if alike.len() > 1 {
-                let beside: Vec<&Part> = alike.iter().filter_map(|&other| parts.get(other)).collect();
-                grids.push(Self::beside(file, &beside));
-                grouped.extend(alike);
-                continue;
+        }
+        let mut grids = Vec::new();
+        for part in parts {
+            let group = beside_key(part).and_then(|key| together.get_mut(&key)).filter(|group| group.len() != 1);
+            match group.map(std::mem::take) {
+                None => grids.extend(Self::single(file, part, decimal)),
+                // Where its first one stands.
+                Some(beside) if beside.is_empty() => {}
+                Some(beside) => grids.push(Self::beside(file, &beside)),
             }
-            grids.extend(Self::single(file, part, decimal));
         }
         grids
     }
 
     fn single(file: usize, part: &'a Part, decimal: Option<Decimal>) -> Option<Self> {
         let name = part.name.as_deref();
-        let grid = |body, width: usize| Self {
-            file,
-            part: name,
-            body,
-            names: vec![String::new(); width],
-            header: Header::Absent,
-            decimal: None,
-        };
+        let grid = |body| Self { file, part: name, body, names: Vec::new(), header: Header::Absent, decimal: None };
         Some(match &part.body {
             Body::Record(_) => return None,
-            Body::Words(words) => grid(Fields::Columns(vec![Column::Words(words)]), 1),
-            Body::Numbers(numbers) => grid(Fields::Numbers(numbers.view()), numbers.ncols()),
+            Body::Words(words) => grid(Fields::Columns(vec![Column::Words(words)])),
+            Body::Numbers(numbers) => grid(Fields::Numbers(numbers.view())),
             Body::Cells(cells) => {
-                let mut grid = grid(Fields::Text(cells, 0), cells.width());
+                let mut grid = grid(Fields::Text(cells, 0));
                 // Names above the columns may look like numbers of another kind.
                 let found = |first: usize| {
                     let mark = decimal_mark(cells, first..cells.height());
@@ -104,7 +97,6 @@ impl<'a> Grid<'a> {
                 if grid.header == Header::Absent {
                     grid.decimal = Some(found(0));
                 } else {
-                    grid.names = cells.row(0).map(String::from).collect();
                     grid.body = Fields::Text(cells, 1);
                 }
                 grid.upright(cells)
@@ -121,7 +113,7 @@ impl<'a> Grid<'a> {
             && words(0)
             && 2 * cells.row(0).filter(|n| site(n)).count() > cells.width()
         {
-            return Self { names: vec![String::new()], body: Fields::Turned(cells, 0), header: Header::Absent, ..self };
+            return Self { body: Fields::Turned(cells, 0), header: Header::Absent, ..self };
         }
         let whole = |first: usize| {
             let value =
@@ -139,8 +131,7 @@ impl<'a> Grid<'a> {
         if !cells.is_headed() || !whole(0) {
             return self;
         }
-        let names = vec![String::new(); 4];
-        let turned = Self { names, body: Fields::Turned(cells, 0), header: Header::Absent, ..self.clone() };
+        let turned = Self { body: Fields::Turned(cells, 0), header: Header::Absent, ..self.clone() };
         if is_head(&turned, [1, 2, 3]) { turned } else { self }
     }
 
@@ -157,7 +148,12 @@ impl<'a> Grid<'a> {
     }
 
     pub fn width(&self) -> usize {
-        self.names.len()
+        match &self.body {
+            Fields::Text(cells, _) => cells.width(),
+            Fields::Numbers(numbers) => numbers.ncols(),
+            Fields::Columns(columns) => columns.len(),
+            Fields::Turned(cells, _) => cells.height(),
+        }
     }
 
     pub fn height(&self) -> usize {
@@ -184,12 +180,15 @@ impl<'a> Grid<'a> {
         matches!(&self.body, Fields::Columns(columns) if matches!(columns.as_slice(), [Column::Words(_)]))
     }
 
-    pub fn names(&self) -> &[String] {
-        &self.names
+    pub fn names(&self) -> impl Iterator<Item = &str> {
+        (0..self.width()).map(|column| self.name(column))
     }
 
     pub fn name(&self, column: usize) -> &str {
-        self.names.get(column).map_or("", String::as_str)
+        match &self.body {
+            Fields::Text(cells, 1) => cells.field(0, column),
+            _ => self.names.get(column).map_or("", String::as_str),
+        }
     }
 
     /// Line of a row of the file, from 1; the number of the row where there are no lines.
@@ -263,7 +262,7 @@ impl<'a> Grid<'a> {
 
     /// The column whose name fits.
     pub fn column(&self, fits: impl Fn(&str) -> bool) -> Option<usize> {
-        self.names.iter().position(|name| !name.is_empty() && fits(name))
+        self.names().position(|name| !name.is_empty() && fits(name))
     }
 
     /// Whether a column holds any number.
@@ -379,25 +378,23 @@ fn split_name(part: &Part) -> (Option<&str>, &str) {
     }
 }
 
-/// Whether two parts are vectors of one length, several of them, under one outer name.
-fn goes_beside(one: &Part, other: &Part) -> bool {
-    let length = |part: &Part| match &part.body {
-        Body::Words(words) => Some(words.len()),
-        Body::Numbers(numbers) if numbers.ncols() == 1 => Some(numbers.nrows()),
-        Body::Numbers(numbers) if numbers.nrows() == 1 => None,
-        _ => None,
+/// What parts have in common that belong side by side: the outer name and the length of vectors.
+fn beside_key(part: &Part) -> Option<(Option<&str>, usize)> {
+    let length = match &part.body {
+        Body::Words(words) => words.len(),
+        Body::Numbers(numbers) if numbers.ncols() == 1 => numbers.nrows(),
+        _ => return None,
     };
-    length(one).is_some_and(|length| length > 1)
-        && length(one) == length(other)
-        && split_name(one).0 == split_name(other).0
-        && one.name.is_some()
-        && other.name.is_some()
+    (length > 1 && part.name.is_some()).then(|| (split_name(part).0, length))
 }
 
 /// A comma is the decimal mark where numbers of these rows have commas and none has a point; `None` where none has either.
 fn decimal_mark(cells: &Cells, rows: Range<usize>) -> Option<Decimal> {
+    if !cells.contains(',') {
+        return None;
+    }
     let mut commas = None;
-    for field in rows.filter(|_| cells.contains(',')).flat_map(|row| cells.row(row)) {
+    for field in rows.flat_map(|row| cells.row(row)) {
         if field.contains('.') && number(field).is_some() {
             return Some(Decimal::Point);
         }

@@ -147,7 +147,9 @@ pub(super) fn read_maps(
         let names: Vec<String> = passed_over.iter().map(|&column| super::written(grid, column)).collect();
         found.notes.push(Finding::new(Code::ColumnsPassedOver).at(found.place(INPUT, grid)).with("columns", names));
     }
-    let used = columns.iter().map(|&column| (column, "value")).collect();
+    // Of the columns of values the first and the last tell which they are.
+    let ends = columns.first().into_iter().chain(columns.last().filter(|last| Some(*last) != columns.first()));
+    let used = ends.map(|&column| (column, "value")).collect();
     found.columns = Columns { passed_over, ..Columns::new(label, used) };
     Ok(Read { maps: Maps { labels, lines, names, values }, labelled, named })
 }
@@ -192,7 +194,8 @@ fn value_columns(grid: &Grid<'_>, label: Option<usize>, beside: &[usize]) -> (Ve
         others.partition(|&column| !only_words(column) && !counting(column))
     } else {
         let values: Vec<usize> = super::role::values_beside(grid, label, beside).collect();
-        others.partition(|column| values.contains(column))
+        // They rise.
+        others.partition(|column| values.binary_search(column).is_ok())
     };
     // A table in which nothing but words was found is told by its first wrong field.
     if values.is_empty() { (passed_over, Vec::new()) } else { (values, passed_over) }

@@ -715,13 +715,9 @@ fn written(grid: &Grid<'_>, column: usize) -> String {
     }
 }
 
-/// Columns with their meaning; of those that hold values only the first and the last.
+/// Columns with their meaning.
 fn used_columns(grid: &Grid<'_>, columns: &Columns) -> Vec<UsedColumn> {
-    let values: Vec<usize> = columns.used.iter().filter(|(_, meaning)| *meaning == "value").map(|(c, _)| *c).collect();
-    let shown = |column: usize, meaning: &str| {
-        meaning != "value" || values.first() == Some(&column) || values.last() == Some(&column)
-    };
-    let used = columns.used.iter().filter(|(column, meaning)| shown(*column, meaning));
+    let used = columns.used.iter();
     used.map(|&(column, meaning)| UsedColumn { column: column + 1, name: grid.name(column).to_owned(), meaning })
         .collect()
 }

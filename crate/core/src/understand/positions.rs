@@ -308,7 +308,7 @@ pub(super) fn column(grid: &Grid<'_>, name: &ColumnName, found: &Found) -> Resul
             ColumnName::Name(name) => name.clone(),
         };
         let place = Place { line: Some(grid.first_line()), ..found.place("settings", grid) };
-        let known: Vec<String> = grid.names().iter().filter(|name| !name.is_empty()).cloned().collect();
+        let known: Vec<String> = grid.names().filter(|name| !name.is_empty()).map(String::from).collect();
         let finding = Finding::new(Code::ColumnUnknown).at(place).with("column", written);
         finding.with("width", grid.width()).with("known", known).into()
     })

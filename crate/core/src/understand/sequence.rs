@@ -89,28 +89,28 @@ fn listed(grid: &Grid<'_>, count: usize) -> Option<Moments> {
 
 /// Times that the names of three or more maps are, as `-100`, `0.004` or `12 ms`; numbers that only count are none.
 fn named_times(names: &[String]) -> Option<Moments> {
-    let mut units = Vec::new();
+    let mut common: Option<String> = None;
     let times: Vec<f64> = names
         .iter()
         .map(|name| {
             let name = name.trim().trim_start_matches(['t', 'T']).trim_start_matches(['=', '_', ' ']);
             let end = name.find(|c: char| !(c.is_ascii_digit() || "+-.,eE".contains(c))).unwrap_or(name.len());
             let (number, unit) = name.split_at_checked(end)?;
-            units.push(unit.trim().to_ascii_lowercase());
-            number_with_comma(number.trim()).filter(|time| time.is_finite())
+            let unit = unit.trim().to_ascii_lowercase();
+            let same = *common.get_or_insert_with(|| unit.clone()) == unit;
+            number_with_comma(number.trim()).filter(|time| same && time.is_finite())
         })
         .collect::<Option<_>>()?;
-    let unit = match units.first().map(String::as_str) {
+    let unit = match common.as_deref() {
         Some("ms" | "msec") => Some("ms"),
         Some("s" | "sec") => Some("s"),
         Some("") => None,
         _ => return None,
     };
-    let same = units.iter().all(|unit| Some(unit) == units.first());
     let counted = times.iter().enumerate().all(|(index, time)| *time == index as f64 + times.first().unwrap_or(&0.0))
         && times.first().is_some_and(|first| *first == 0.0 || *first == 1.0);
     let enough = times.len() > 2 || unit.is_some();
-    (same && enough && rises(&times) && (unit.is_some() || !counted)).then(|| Moments {
+    (enough && rises(&times) && (unit.is_some() || !counted)).then(|| Moments {
         unit: unit.unwrap_or_else(|| unit_of(&times)),
         times,
         are_names: true,
