@@ -586,6 +586,9 @@ def arrays():
     inside[3] = replace(inside[3], role="channels", rows=25, columns=7, label=None, passed_over=["units", "sampling_frequency", "reference", "status_description"])
     sample("an archive of a BIDS folder", replace(inside[4], role="maps"), *inside[:1], *inside[2:4], electrodes=replace(inside[1], role="electrodes", columns=7), given=["study.zip"],
            units=("mm", "declared"), left_out=["T8"], notes=["channels-bad", "file-unused"])
+    WRITTEN["here.zip"] = zipped([("./electrodes.tsv", text(place_rows())), ("./maps.tsv", text(map_rows()))])
+    here = [File("here.zip/./electrodes.tsv", b"", "electrodes"), File("here.zip/./maps.tsv", b"", "maps")]
+    sample("an archive whose paths begin with ./", here[1], electrodes=here[0], given=["here.zip"])
     letter = zipped([("maps.tsv", text(map_rows())), ("letter", "Dear all,\nthe wind has turned,\nthe keeper\n"), ("electrodes.tsv", text(place_rows()))])
     WRITTEN["letter.zip"] = letter
     inside = [File("letter.zip/electrodes.tsv", b"", "electrodes"), File("letter.zip/maps.tsv", b"", "maps"), File("letter.zip/letter", b"", "unused", header=False, delimiter=("blanks", "found"), rows=3, columns=2)]

@@ -119,7 +119,8 @@ impl Entry {
 
     /// No folder, nothing hidden, nothing that a system keeps for itself.
     fn is_wanted(&self) -> bool {
-        let system = |part: &str| part.starts_with('.') || part == "__MACOSX" || part.eq_ignore_ascii_case("thumbs.db");
+        let hidden = |part: &str| part.starts_with('.') && ![".", ".."].contains(&part);
+        let system = |part: &str| hidden(part) || part == "__MACOSX" || part.eq_ignore_ascii_case("thumbs.db");
         !self.name.ends_with('/') && !self.name.split(['/', '\\']).any(system)
     }
 

@@ -1,6 +1,6 @@
 //! Words for choices: a sentence for each, and a name for each option.
 
-use super::messages::{axes_words, listed};
+use super::messages::{axes_words, clipped, listed};
 use super::number::significant;
 use crate::finding::{Choice, Origin, Value};
 use crate::head::AxesName;
@@ -201,11 +201,11 @@ pub fn option_label(setting: &str, value: &Value, own: Option<&str>) -> String {
         ("axes", name) if name != "oblique" => return axes_words(name),
         (setting, _) if setting == "label" || setting.starts_with("columns.") => {
             return match own {
-                Some(name) => format!("column {text}, “{name}”"),
+                Some(name) => format!("column {text}, “{}”", clipped(name)),
                 None => format!("column {text}"),
             };
         }
-        _ => return own.map_or(text, String::from),
+        _ => return clipped(own.unwrap_or(&text)),
     };
     words.into()
 }

@@ -8,7 +8,7 @@ pub fn message(finding: &Finding) -> String {
     let value = |name: &str| match finding.value(name) {
         None => String::new(),
         Some(Value::Text(text)) if ["why", "lacks", "what"].contains(&name) => reason(text).to_owned(),
-        Some(Value::Text(text)) if name == "problem" => text.clone(),
+        Some(Value::Text(text)) if name == "problem" => shortened(text, 300),
         Some(Value::Text(text)) => clipped(text),
         Some(Value::Number(number)) => significant(*number, 3),
         Some(Value::Count(count)) => count.to_string(),
@@ -29,9 +29,16 @@ pub fn message(finding: &Finding) -> String {
             Some(Value::Count(shell)) => format!("The head cannot be computed: shell {shell}: {}.", value("why")),
             _ => format!("The head cannot be computed: {}{}.", value("why"), value("label")),
         },
+        Code::InputEmpty if place.is_some_and(|p| p.byte.is_some()) => {
+            format!("The {input} holds nothing (byte {byte}).")
+        }
         Code::InputEmpty => format!("The {input} holds nothing."),
         Code::InputTooLarge if finding.value("what").is_some() => {
-            format!("The {input} {} more than {} MiB, the most that is read.", value("what"), value("most_mib"))
+            format!(
+                "The {input} {} more than {} MiB, the most that is read (byte {byte}).",
+                value("what"),
+                value("most_mib")
+            )
         }
         Code::InputTooLarge => {
             format!("The {input} is larger than {} MiB, the most that is read.", value("most_mib"))
@@ -89,7 +96,7 @@ pub fn message(finding: &Finding) -> String {
             }
             _ => format!("The {input} is not JSON: line {line} (byte {byte}) cannot stand there."),
         },
-        Code::JsonContent => format!("The {input} holds JSON that is no table: line {line}: {}.", value("why")),
+        Code::JsonContent => format!("The {input} holds JSON that is no table: line {line} (byte {byte}): {}.", value("why")),
         Code::MapsMissing => match value("file").as_str() {
             "" => "No file was given.".into(),
             _ => "None of the files holds maps.".into(),
@@ -613,8 +620,12 @@ fn reason(key: &str) -> &'static str {
 }
 
 /// The beginning of a text that may be of any length.
-fn clipped(text: &str) -> String {
-    match text.char_indices().nth(60) {
+pub(super) fn clipped(text: &str) -> String {
+    shortened(text, 60)
+}
+
+fn shortened(text: &str, most: usize) -> String {
+    match text.char_indices().nth(most) {
         Some((end, _)) => format!("{}…", &text[..end]),
         None => text.to_owned(),
     }

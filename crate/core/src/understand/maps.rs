@@ -38,7 +38,8 @@ pub(super) fn read_maps(
     found: &mut Found,
 ) -> Result<Read, Error> {
     let first = Place { line: Some(grid.first_line()), ..found.place(INPUT, grid) };
-    let none = || Error::from(Finding::new(Code::MapsNone).at(first.clone()));
+    let whole = Place { line: None, ..first.clone() };
+    let none = || Error::from(Finding::new(Code::MapsNone).at(whole.clone()));
     let mut label = label_wish(grid, wishes, None, found)?.or(numbered);
     let (mut columns, mut passed_over) = value_columns(grid, label, beside);
     let keys: HashSet<String> = known.iter().flatten().map(Label::key).collect();
@@ -50,7 +51,7 @@ pub(super) fn read_maps(
                 finding.with("lacks", "label-column").with("width", grid.width()).into()
             }
             Some(count) => {
-                let finding = Finding::new(Code::ShapeUnmatched).at(first);
+                let finding = Finding::new(Code::ShapeUnmatched).at(whole);
                 finding.with("rows", grid.height()).with("columns", columns.len()).with("labels", count).into()
             }
         });
@@ -88,7 +89,7 @@ pub(super) fn read_maps(
         _ => {
             labelled = false;
             by_order().ok_or_else(|| {
-                let finding = Finding::new(Code::ShapeUnmatched).at(first.clone());
+                let finding = Finding::new(Code::ShapeUnmatched).at(whole.clone());
                 let labels = known.iter().map(Vec::len).max().unwrap_or(0);
                 Error::from(finding.with("rows", grid.height()).with("columns", columns.len()).with("labels", labels))
             })?
