@@ -140,8 +140,7 @@ fn every_refusal_names_file_place_what_was_found_and_the_next_step() {
         *refused.entry(error.code).or_default() += 1;
         let mut own = said(&error);
         let file = error.file();
-        let of_settings = settings != Settings::default() && ["map-laplacian"].contains(&error.code);
-        if !of_settings && !names.iter().any(|name| file == *name || file.starts_with(&format!("{name}/"))) {
+        if !names.iter().any(|name| file == *name || file.starts_with(&format!("{name}/"))) {
             own.push(format!("file {file:?}"));
         }
         faults.extend(own.iter().map(|fault| format!("{} {names:?}: {fault}: {}", error.code, error.message)));

@@ -107,7 +107,8 @@ impl Study {
     fn prepared(tables: Arc<Tables>, settings: Settings, before: Option<&Self>) -> Result<Self, Error> {
         settings.check(&tables.understood.maps.names)?;
         if settings.laplacian == Some(true) {
-            return Err(Finding::new(Code::MapLaplacian).at(Place::input("maps")).into());
+            let error = Finding::new(Code::MapLaplacian).at(Place::input("maps")).into();
+            return Err(tables.understood.in_file(error));
         }
         let head = settings.head.clone().unwrap_or_default();
         let shells = head.shells.map_or_else(|| Ok(Shells::standard()), Shells::new)?;

@@ -109,7 +109,7 @@ pub fn message(finding: &Finding) -> String {
             value("labels")
         ),
         Code::ColumnUnknown => format!(
-            "The {input} has no column “{}”; it has {}{}.",
+            "The {input} has no column “{}” (line {line}); it has {}{}.",
             value("column"),
             counted("width", "column"),
             match value("known").as_str() {
