@@ -79,6 +79,14 @@ fn bare(table: &str) -> String {
     table.lines().skip(1).map(|line| line.split_once('\t').unwrap().1.to_owned() + "\n").collect()
 }
 
+/// A table with two labels exchanged.
+fn exchanged(table: &str, one: &str, other: &str) -> String {
+    table
+        .replace(&format!("\n{one}\t"), "\n?\t")
+        .replace(&format!("\n{other}\t"), &format!("\n{one}\t"))
+        .replace("\n?\t", &format!("\n{other}\t"))
+}
+
 /// A table with labels that tell nothing.
 fn numbered(table: &str) -> String {
     let line = |(k, line): (usize, &str)| match line.split_once('\t') {
@@ -384,6 +392,13 @@ fn every_note_is_given_when_it_applies_and_not_otherwise() {
     });
     // Sources so close under the scalp need hundreds of terms and more images than there may be.
     let thin_skull = vec![shell("brain", 0.99997, 10.9), shell("scalp", 1.0, 0.0104)];
+    // Decimal commas in a table whose fields are divided by commas.
+    let divided: String = m
+        .lines()
+        .skip(1)
+        .enumerate()
+        .map(|(row, line)| format!("{},-0,{}\n", line.split('\t').next().unwrap(), row * row % 97))
+        .collect();
     let cases: Vec<(&str, &str, Option<String>, String, Settings)> = vec![
         ("standard-positions", "info", None, m.clone(), micro.clone()),
         ("unit-sphere-scaled", "info", Some(unit), m.clone(), micro.clone()),
@@ -407,6 +422,8 @@ fn every_note_is_given_when_it_applies_and_not_otherwise() {
             m.clone(),
             Settings { axes: Some("front-left-up".parse().unwrap()), ..micro.clone() },
         ),
+        ("labels-misplaced", "warning", Some(exchanged(&e, "T7", "T8")), m.clone(), micro.clone()),
+        ("decimals-suspected", "warning", Some(e.clone()), divided, micro.clone()),
         ("mirrored", "warning", Some(moved(|_, p| Vec3::new(-p[0], p[1], p[2]))), m.clone(), micro.clone()),
         ("labels-renamed", "info", Some(e.clone()), m.replacen("\nFp1\t", "\nEEG Fp1-Ref\t", 1), micro.clone()),
         ("labels-renamed", "info", Some(e.clone()), m.replacen("\nT7\t", "\nT3\t", 1), micro.clone()),
@@ -493,6 +510,7 @@ fn every_note_is_given_when_it_applies_and_not_otherwise() {
         ("angles-read", "info", vec![("m", mb), ("e", angles.as_bytes())], plain()),
         ("file-unused", "warning", vec![("m", mb), ("e", eb), ("s", sampling)], plain()),
         ("part-unused", "info", vec![("m", several.as_bytes()), ("e", eb)], plain()),
+        ("unmixing-suspected", "warning", vec![("unmixing.tsv", mb), ("e", eb)], plain()),
         ("unmixing-inverted", "info", vec![("m", mb), ("e", eb)], unmixing()),
         ("sphering-absent", "warning", vec![("m", mb), ("e", eb)], unmixing()),
         ("baseline-subtracted", "info", vec![("m", mb), ("e", eb)], moments),

@@ -116,6 +116,12 @@ fn measured_heads_are_read_without_a_question_and_fitted() {
         // The labels tell no axes: that is asked, and answered by the description of the coordinates.
         assert!(codes(&alone).contains(&"axes-assumed") && questions(&alone).contains(&"axes"));
 
+        // Landmarks in another system than the electrodes' say nothing of these.
+        let elsewhere = coordinates.replacen("System\": \"Other\"", "System\": \"CTF\"", 1);
+        let files = vec![("e", table.as_bytes()), ("c", elsewhere.as_bytes()), ("m", maps.as_bytes())];
+        let apart = analyse(&Request { files, ..Request::default() }).unwrap();
+        assert!(elsewhere != coordinates && codes(&apart).contains(&"axes-assumed"));
+
         let files = [("one", table.as_bytes()), ("two", coordinates.as_bytes()), ("three", maps.as_bytes())];
         for order in [[0, 1, 2], [0, 2, 1], [1, 0, 2], [1, 2, 0], [2, 0, 1], [2, 1, 0]] {
             let files = order.map(|at: usize| files[at]).to_vec();

@@ -176,8 +176,22 @@ fn labels_that_contradict_the_positions_are_not_believed() {
     let order = Draw::from(3).order(labels.len());
     let shuffled = |label: &str| labels[order[labels.iter().position(|known| known == label).unwrap()]].clone();
     let report = run(Some(&changed(&e, shuffled, |p| p)), &m, Settings::default());
-    assert!(note(&report, "axes-assumed").is_some());
+    assert!(
+        note(&report, "axes-assumed").unwrap().contains("labels with standard places fit the positions in no axes")
+    );
     assert_eq!(report.head.axes, Axes::CANONICAL.rows());
+    // Two of them exchanged: the axes are found, and the two are named.
+    for (one, other) in [("T7", "T8"), ("F3", "F4"), ("O1", "Fp1")] {
+        let exchanged = |label: &str| match label {
+            _ if label == one => other.to_owned(),
+            _ if label == other => one.to_owned(),
+            _ => label.to_owned(),
+        };
+        let report = run(Some(&changed(&e, exchanged, |p| p)), &m, Settings::default());
+        let warning = note(&report, "labels-misplaced").unwrap();
+        let named = [format!(": {one}, {other}."), format!(": {other}, {one}.")];
+        assert!(named.iter().any(|named| warning.contains(named)), "{warning}");
+    }
     let turned = Settings { axes: Some("front-left-up".parse().unwrap()), ..Settings::default() };
     let warning = run(Some(&e), &m, turned);
     assert!(note(&warning, "axes-contradicted").unwrap().contains("x to the right, y to the front, z up"));

@@ -310,6 +310,12 @@ codes! {
     UnusualHead = "unusual-head",
     /// Note: the maps may be surface Laplacians.
     LaplacianSuspected = "laplacian-suspected",
+    /// Note: by their labels, electrodes lie far from where they should.
+    LabelsMisplaced = "labels-misplaced",
+    /// Note: by its name, what was read as maps may be an unmixing matrix.
+    UnmixingSuspected = "unmixing-suspected",
+    /// Note: commas that divide fields may have been decimal marks.
+    DecimalsSuspected = "decimals-suspected",
     /// Note: a first line without a usual name was taken as names of the columns.
     HeaderAssumed = "header-assumed",
     /// Note: lines above the table were passed over.

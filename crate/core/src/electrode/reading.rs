@@ -230,7 +230,10 @@ impl Reading {
             let (name, rest) = words.split_at(count);
             if let Some(site) = found(&name.concat()) {
                 let name = name.concat();
-                return Self { key: name.to_lowercase(), name, kind: Kind::Site(site), second: second(rest) };
+                // An old name beside the new one, as in `T7/T3`, is no second site.
+                let same = |second: &Second| matches!(second, Second::Site(other) if other.name == site.name);
+                let second = second(rest).filter(|second| !same(second));
+                return Self { key: name.to_lowercase(), name, kind: Kind::Site(site), second };
             }
         }
         let mut core = words.as_slice();
@@ -291,6 +294,14 @@ mod tests {
             Kind::Site(site) => Some(&site.name),
             _ => None,
         }
+    }
+
+    #[test]
+    fn old_and_new_name_are_one_site() {
+        for text in ["T7/T3", "T3/T7", "P7 (T5)", "EEG T8-T4"] {
+            assert!(read(text).second.is_none() && site_of(text).is_some(), "{text}");
+        }
+        assert!(matches!(read("T7-T4").second, Some(Second::Site(_))));
     }
 
     #[test]

@@ -10,6 +10,12 @@ use crate::math::Vec3;
 /// Axes that labels contradict by more than this are worth a warning.
 const CONTRADICTED_DEGREES: f64 = 45.0;
 
+/// So far from its standard place an electrode of a measured head does not lie, tilted or not: more is an exchange.
+const MISPLACED_DEGREES: f64 = 40.0;
+
+/// Fewest labels with standard places that are expected to tell the axes.
+const MANY: usize = 10;
+
 /// What the numbers of a table are.
 pub(super) enum Frame {
     /// Positions in a unit of so many millimetres, and the fitted sphere in millimetres.
@@ -197,6 +203,8 @@ pub(super) fn find_axes(
             .with("tilt_degrees", orientation.tilt_degrees),
     );
     notes.push(match evidence {
+        // So many names always tell how a head lies, if they are those of its electrodes.
+        Evidence::Nothing if named.len() >= MANY => Finding::new(Code::AxesAssumed).at(at()).with("named", named.len()),
         Evidence::Nothing => Finding::new(Code::AxesAssumed).at(at()),
         _ => Finding::new(Code::AxesFound)
             .at(at())
@@ -210,6 +218,20 @@ pub(super) fn find_axes(
         let (nearest, _) = labels.axes.nearest();
         notes.push(Finding::new(Code::AxesContradicted).at(at()).with("axes", nearest.to_string()));
     }
+    let axes = if wishes.mirror == Some(true) { orientation.axes.mirrored() } else { orientation.axes };
+    let agree = by_labels.is_some_and(|labels| labels.axes.angle_to(&orientation.axes) <= CONTRADICTED_DEGREES);
+    // In a mirror image every label is off.
+    if agree && (!mirrored || wishes.mirror == Some(true)) {
+        let most = MISPLACED_DEGREES + orientation.tilt_degrees;
+        let off = |arm: Vec3, site: Vec3| libm::acos(axes.to_canonical(arm).dot(site).clamp(-1.0, 1.0)).to_degrees();
+        let named = named.iter().map(|(electrode, (arm, site))| (off(*arm, *site), electrode.label.to_string()));
+        let mut far: Vec<(f64, String)> = named.filter(|(off, _)| *off > most).collect();
+        far.sort_by(|a, b| b.0.total_cmp(&a.0));
+        if let Some((degrees, _)) = far.first() {
+            let finding = Finding::new(Code::LabelsMisplaced).at(at()).with("degrees", degrees.round() as usize);
+            notes.push(finding.with("labels", far.into_iter().map(|(_, label)| label).collect::<Vec<String>>()));
+        }
+    }
     if mirrored || wishes.mirror == Some(true) {
         let origin = if wishes.mirror.is_some() { Origin::Setting } else { Origin::Assumed };
         let value = wishes.mirror == Some(true);
@@ -218,7 +240,6 @@ pub(super) fn find_axes(
             notes.push(Finding::new(Code::Mirrored).at(at()));
         }
     }
-    let axes = if wishes.mirror == Some(true) { orientation.axes.mirrored() } else { orientation.axes };
     AxesFound { axes, evidence, name, tilt_degrees: orientation.tilt_degrees, misfit_degrees, mirrored }
 }
 

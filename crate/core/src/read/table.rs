@@ -131,6 +131,10 @@ pub fn is_missing(field: &str) -> bool {
 
 /// The number that a field holds, of whatever size, written with a decimal point.
 pub fn number(field: &str) -> Option<f64> {
+    // The minus sign of typesetters.
+    if let Some(rest) = field.strip_prefix('\u{2212}') {
+        return number(rest).filter(|_| rest.starts_with(|c: char| c == '.' || c.is_ascii_digit())).map(|value| -value);
+    }
     // `parse` also takes words such as "inf" and "nan".
     let plain = field.bytes().all(|b| matches!(b, b'0'..=b'9' | b'+' | b'-' | b'.' | b'e' | b'E'));
     if plain { field.parse().ok() } else { None }
@@ -664,7 +668,8 @@ mod tests {
         assert_eq!(code("1,5", false), Err(Code::NumberExpected));
         assert_eq!(code("-1,5e1", true), Ok(-15.0));
         assert_eq!(code("1.000,5", true), Err(Code::NumberExpected));
-        for not in ["inf", "NaN", "1,5", "0x10", "", "-"] {
+        assert_eq!(number("\u{2212}0.66"), Some(-0.66));
+        for not in ["inf", "NaN", "1,5", "0x10", "", "-", "\u{2212}", "\u{2212}-5"] {
             assert_eq!(number(not), None, "{not}");
         }
     }

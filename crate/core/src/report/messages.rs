@@ -215,8 +215,27 @@ pub fn message(finding: &Finding) -> String {
             value("map")
         ),
         Code::AxesAssumed => {
-            "Axes were assumed: x to the right, y to the front, z up. Neither labels nor landmarks tell them.".into()
+            let assumed = "Axes were assumed: x to the right, y to the front, z up.";
+            match finding.value("named") {
+                Some(_) => format!(
+                    "{assumed} The {} labels with standard places fit the positions in no axes: labels and positions may have been sorted apart or shifted against each other.",
+                    value("named")
+                ),
+                None => format!("{assumed} Neither labels nor landmarks tell them."),
+            }
         }
+        Code::LabelsMisplaced => format!(
+            "Far from the places that their labels have, by {}° at most: {}. Labels may be exchanged, or a coordinate wrong.",
+            value("degrees"),
+            value("labels")
+        ),
+        Code::UnmixingSuspected => format!(
+            "By its name “{}” may be an unmixing matrix, whose rows are weights and no maps; it was read as maps: please say which it is.",
+            value("found")
+        ),
+        Code::DecimalsSuspected => format!(
+            "Line {line} of the {input} has “-0” before a whole number. If its commas are decimal marks, numbers were taken apart and the maps are wrong: give a table in which other marks divide the fields."
+        ),
         Code::AxesFound => {
             let tilt = number(finding, "tilt_degrees").filter(|tilt| *tilt >= 0.5).map(significant2);
             let axes = match (value("axes").as_str(), &tilt) {
@@ -471,6 +490,9 @@ pub fn is_warning(code: Code) -> bool {
         code,
         Code::AxesAssumed
             | Code::AxesContradicted
+            | Code::LabelsMisplaced
+            | Code::UnmixingSuspected
+            | Code::DecimalsSuspected
             | Code::Mirrored
             | Code::ChannelsZero
             | Code::UnitOverruled

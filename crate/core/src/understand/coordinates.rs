@@ -15,17 +15,18 @@ pub(super) struct Described {
 
 /// Unit and landmarks of a `*_coordsystem.json` of the Brain Imaging Data Structure (BIDS 1.10, "Coordinate System
 /// JSON"), whatever the prefix of its keys: `EEGCoordinateUnits`, `AnatomicalLandmarkCoordinates` and their units. Landmarks are brought to the unit of the electrodes.
-/// Names of coordinate systems are not used: what they mean is told by the landmarks.
+/// What the names of coordinate systems mean is not used, that is told by the landmarks; only whether landmarks and electrodes have the same.
 pub(super) fn read_coordinates(records: &[(usize, &Record)], _found: &mut Found) -> Described {
     let mut described = Described::default();
     for (_, record) in records.iter().filter(|(_, record)| role_of_record(record) == Role::Coordinates) {
-        let unit = |ends: &str, starts: &str| {
+        let text = |ends: &str, starts: &str| {
             let fits = |key: &str| key.ends_with(ends) && key.starts_with(starts);
             record.iter().find_map(|(key, value)| match value {
-                Tree::Text(unit) if fits(&key.to_ascii_lowercase()) => unit_of(unit),
+                Tree::Text(text) if fits(&key.to_ascii_lowercase()) => Some(text.trim().to_ascii_lowercase()),
                 _ => None,
             })
         };
+        let unit = |ends: &str, starts: &str| text(ends, starts).and_then(|unit| unit_of(&unit));
         let electrodes = unit("eegcoordinateunits", "")
             .or_else(|| unit("coordinateunits", "eeg"))
             .or_else(|| unit("coordinateunits", "coordinateunits"))
@@ -39,6 +40,11 @@ pub(super) fn read_coordinates(records: &[(usize, &Record)], _found: &mut Found)
             let Some(kind) = kind.filter(|_| key.ends_with("coordinates") || key.ends_with("landmarks")) else {
                 continue;
             };
+            // Points in another system than the electrodes' say nothing of these.
+            let systems = text("coordinatesystem", kind).zip(text("coordinatesystem", "eeg"));
+            if systems.is_some_and(|(points, electrodes)| points != electrodes) {
+                continue;
+            }
             let own = unit("coordinateunits", kind).or(electrodes);
             let scale = match (own, electrodes) {
                 (Some(own), Some(electrodes)) => own.millimetres() / electrodes.millimetres(),
@@ -57,14 +63,13 @@ pub(super) fn read_coordinates(records: &[(usize, &Record)], _found: &mut Found)
 }
 
 fn unit_of(text: &str) -> Option<LengthUnit> {
-    let text = text.trim().to_ascii_lowercase();
     [
         (LengthUnit::Metre, ["m", "meter", "metre", "meters", "metres"]),
         (LengthUnit::Centimetre, ["cm", "centimeter", "centimetre", "centimeters", "centimetres"]),
         (LengthUnit::Millimetre, ["mm", "millimeter", "millimetre", "millimeters", "millimetres"]),
     ]
     .into_iter()
-    .find(|(_, names)| names.contains(&text.as_str()))
+    .find(|(_, names)| names.contains(&text))
     .map(|(unit, _)| unit)
 }
 

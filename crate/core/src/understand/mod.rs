@@ -482,6 +482,13 @@ impl Chosen {
             let place = Place { file: found.given_name(file), ..Place::input("maps") };
             found.notes.push(Finding::new(Code::LabelsByOrder).at(place).with("count", maps.labels.len()));
         }
+        let written = [maps_grid.part.map(String::from), Some(found.name(maps_grid.file))];
+        if wishes.maps_are.is_none()
+            && let Some(name) = written.into_iter().flatten().find(|name| hints_at_unmixing(name))
+        {
+            let place = found.place("maps", maps_grid);
+            found.notes.push(Finding::new(Code::UnmixingSuspected).at(place).with("found", name));
+        }
         if wishes.maps_are == Some(MapsAre::Unmixing) {
             let sphering = self.sphering.and_then(grid);
             maps = unmixing::mixing(maps, maps_grid, sphering, &mut found)?;
@@ -723,6 +730,21 @@ fn used_columns(grid: &Grid<'_>, columns: &Columns) -> Vec<UsedColumn> {
 }
 
 /// Notes and choices about how numbers and names were read.
+/// Whether a file or one of its parts is named as unmixing matrices usually are.
+fn hints_at_unmixing(name: &str) -> bool {
+    let name = name.to_lowercase();
+    let last = name.rsplit('.').next().unwrap_or_default();
+    last == "w" || ["unmix", "weights", "demix"].iter().any(|word| name.contains(word))
+}
+
+/// The first line in which a comma may have been a decimal mark: `-0`, then a whole number without a sign.
+fn divided_decimals(grid: &Grid<'_>) -> Option<usize> {
+    let whole = |word: &str| !word.is_empty() && word.bytes().all(|byte| byte.is_ascii_digit());
+    let suspect =
+        |row: usize| (1..grid.width()).any(|next| grid.word(row, next - 1) == "-0" && whole(grid.word(row, next)));
+    (0..grid.height()).find(|&row| suspect(row)).map(|row| grid.line(row))
+}
+
 fn note_details(grids: &[(Grid<'_>, Role)], found: &mut Found) {
     for (grid, role) in grids.iter().filter(|(_, role)| *role != Role::Unused) {
         let input = if *role == Role::Electrodes { "electrodes" } else { "maps" };
@@ -730,8 +752,17 @@ fn note_details(grids: &[(Grid<'_>, Role)], found: &mut Found) {
         if grid.header == Header::Assumed {
             found.notes.push(Finding::new(Code::HeaderAssumed).at(place.clone()));
         }
+        let name = found.file_name(grid);
+        let divided = |choice: &Choice| {
+            choice.setting == "delimiter" && choice.file.as_ref() == Some(&name) && choice.value == "comma".into()
+        };
+        if found.choices.iter().any(divided)
+            && let Some(line) = divided_decimals(grid)
+        {
+            let place = Place { line: Some(line), ..place.clone() };
+            found.notes.push(Finding::new(Code::DecimalsSuspected).at(place));
+        }
         if let Some((decimal, from)) = grid.decimal {
-            let name = found.file_name(grid);
             let choice = Choice::new("decimal", from, decimal.name()).of_file(&name);
             let choice = choice.options([Decimal::Point, Decimal::Comma].map(Decimal::name));
             // Its setting is for all tables of a file.
