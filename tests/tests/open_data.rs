@@ -117,7 +117,7 @@ fn measured_heads_are_read_without_a_question_and_fitted() {
         assert!(codes(&alone).contains(&"axes-assumed") && questions(&alone).contains(&"axes"));
 
         // Landmarks in another system than the electrodes' say nothing of these.
-        let elsewhere = coordinates.replacen("System\": \"Other\"", "System\": \"CTF\"", 1);
+        let elsewhere = coordinates.replacen("System\": \"Other\"", "System\": \"Scanner\"", 1);
         let files = vec![("e", table.as_bytes()), ("c", elsewhere.as_bytes()), ("m", maps.as_bytes())];
         let apart = analyse(&Request { files, ..Request::default() }).unwrap();
         assert!(elsewhere != coordinates && codes(&apart).contains(&"axes-assumed"));
