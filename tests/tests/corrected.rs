@@ -296,7 +296,9 @@ fn a_sphering_matrix_is_asked_for(page: &Page) {
     assert_eq!(page.report()["maps"], lone);
     // Dropped next, it may be another map or belong to this one.
     page.drop_files(&[DroppedFile { name: "sphering.txt", text: &sphering }]);
-    page.until("the offer", |page| page.rests() && page.visible("#take-sphering"));
+    page.until("the offer", |page| {
+        page.rests() && page.visible("#take-sphering") && page.text("#subject").contains("sphering.txt")
+    });
     assert!(page.text("#said").contains("maps.tsv") && !is_right(page), "{}", page.text("#said"));
     page.focus("#main");
     page.tab_to("#take-sphering");
