@@ -112,7 +112,8 @@ def map_rows(head="label", names=NAMES, labels=LABELS):
 def place_rows(head=("label", "x", "y", "z"), labels=LABELS, change=lambda xyz: xyz, digits=None):
     def written(label):
         xyz = change([float(text) for text in PLACES[label]])
-        return [label, *(f"{value:.{digits}f}" if digits else f"{value:.10g}" for value in xyz)]
+        form = ".10g" if digits is None else f".{digits}f"
+        return [label, *(format(value, form) for value in xyz)]
     return [list(head), *map(written, labels)] if head else [written(label) for label in labels]
 
 
