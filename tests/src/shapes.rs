@@ -61,7 +61,7 @@ pub fn shapes(size: usize) -> Vec<Shape> {
     let square = rows(&own(side), side, "\t", |i, j| format!("{}.{}", digit(i, j), digit(j, i)));
     add("a square of labels and maps", vec![("e", electrodes(&own(side))), ("m", square.clone())], 2 * side);
     add("a square without electrodes (refused)", vec![("m", square)], 2 * side);
-    add("many maps in columns", vec![("e", electrodes(&ten)), ("m", rows(&ten, size / 20, "\t", digit))], size / 20);
+    add("many maps in columns", vec![("e", electrodes(&ten)), ("m", rows(&ten, size / 16, "\t", digit))], size / 16);
     let named = names(wide, "\t", |k| format!("IC{k}"));
     let named = format!("label{named}\n{}", rows(&ten, wide, "\t", digit));
     add("many maps with names", vec![("e", electrodes(&ten)), ("m", named)], wide);
