@@ -1,4 +1,3 @@
-use super::Found;
 use super::Role;
 use super::role::role_of_record;
 use crate::electrode::{Kind, Label, Landmark, Reading};
@@ -16,7 +15,7 @@ pub(super) struct Described {
 /// Unit and landmarks of a `*_coordsystem.json` of the Brain Imaging Data Structure (BIDS 1.10, "Coordinate System
 /// JSON"), whatever the prefix of its keys: `EEGCoordinateUnits`, `AnatomicalLandmarkCoordinates` and their units. Landmarks are brought to the unit of the electrodes.
 /// What the names of coordinate systems mean is not used, that is told by the landmarks; only whether landmarks and electrodes have the same.
-pub(super) fn read_coordinates(records: &[(usize, &Record)], _found: &mut Found) -> Described {
+pub(super) fn read_coordinates(records: &[(usize, &Record)]) -> Described {
     let mut described = Described::default();
     for (_, record) in records.iter().filter(|(_, record)| role_of_record(record) == Role::Coordinates) {
         let text = |ends: &str, starts: &str| {

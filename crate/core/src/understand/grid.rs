@@ -191,6 +191,14 @@ impl<'a> Grid<'a> {
         }
     }
 
+    /// Name of a column, or its number.
+    pub fn written(&self, column: usize) -> String {
+        match self.name(column) {
+            "" => (column + 1).to_string(),
+            name => name.to_owned(),
+        }
+    }
+
     /// Line of a row of the file, from 1; the number of the row where there are no lines.
     pub fn line(&self, row: usize) -> usize {
         match &self.body {

@@ -1,6 +1,6 @@
 use super::grid::{Grid, Header};
-use super::positions::{columns_choice, label_of};
-use super::{Columns, Found, MapsAre, Orientation, Wishes, label_wish};
+use super::positions::{columns_choice, label_of, label_wish};
+use super::{Columns, Found, MapsAre, Orientation, Wishes};
 use crate::electrode::{Kind, Label, Reading};
 use crate::finding::{Choice, Code, Error, Finding, Origin, Place};
 use crate::map::Maps;
@@ -145,7 +145,7 @@ pub(super) fn read_maps(
         found.choices.push(columns_choice("label", grid, column, from, found).of_file(&file));
     }
     if !passed_over.is_empty() {
-        let names: Vec<String> = passed_over.iter().map(|&column| super::written(grid, column)).collect();
+        let names: Vec<String> = passed_over.iter().map(|&column| grid.written(column)).collect();
         found.notes.push(Finding::new(Code::ColumnsPassedOver).at(found.place(INPUT, grid)).with("columns", names));
     }
     // Of the columns of values the first and the last tell which they are.

@@ -1,6 +1,6 @@
 use super::grid::Grid;
 use super::wishes::{AngleUnit, AngleWishes, ColumnName, ColumnWishes, Polar};
-use super::{Columns, Found};
+use super::{Columns, Found, Wishes};
 use crate::electrode::{Electrode, Label, standard_position};
 use crate::finding::{Choice, Code, Error, Finding, Origin, Place};
 use crate::math::Vec3;
@@ -232,6 +232,21 @@ fn swapped(grid: &Grid<'_>, label: Option<usize>, columns: [usize; 2], wishes: &
     };
     let [(sites, as_named), (_, exchanged)] = columns.map(best);
     theta.contains("theta") && phi.contains("phi") && sites >= 5 && exchanged < 0.5 * as_named
+}
+
+/// The label column of a grid: by setting, by name, or by content.
+pub(super) fn label_wish(
+    grid: &Grid<'_>,
+    wishes: &Wishes,
+    general: Option<&ColumnName>,
+    found: &Found,
+) -> Result<Option<usize>, Error> {
+    let own = wishes.files.get(&found.file_name(grid)).and_then(|wish| wish.label.as_ref());
+    match own.or(general) {
+        Some(name) => column(grid, name, found).map(Some),
+        None if grid.is_numeric() => Ok(None),
+        None => Ok(grid.label_column()),
+    }
 }
 
 /// The columns that names tell to hold positions; `None` where no names do.
