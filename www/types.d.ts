@@ -362,8 +362,42 @@ interface Engine {
   program(): Program;
 }
 
-/** One line of the list of maps: enough to choose by. */
-type MapSummary = { name: string; rv: number } | { name: string; error: Fault };
+/** A fitted map in numbers to order and draw by, and in words in the order of the table's columns. */
+interface MapRow {
+  name: string;
+  rv: number;
+  adjusted_rv: number;
+  degrees_of_freedom: number;
+  canonical_mm: number[];
+  canonical_direction: number[];
+  position_mm: number[];
+  depth_mm: number;
+  eccentricity: number;
+  strength: number;
+  radial_share: number | null;
+  at_boundary: boolean;
+  nearest_site: string | null;
+  side: string;
+  /** Part of the head: "front-left" to "back-right", or "centre". */
+  region: string;
+  /** Mean square of the measured map over its electrodes. */
+  power: number;
+  /** That times the square of its activation's standard deviation, where this is given. */
+  variance: number | null;
+  flipped: boolean;
+  cells: string[];
+}
+
+/** One line of the list of maps. */
+type MapSummary = MapRow | UnfittedMap;
+
+/** A column of the table of maps. */
+interface TableColumn {
+  code: string;
+  label: string;
+  unit: string;
+  meaning: string;
+}
 
 interface FitProgress {
   done: number;
@@ -451,11 +485,29 @@ interface Inputs extends Record<InputKind, Input | null> {
   others: Input[];
 }
 
-/** Inputs and settings before a change. */
-interface Step {
+/**
+ * One table of maps with all that belongs to it. What is current stands in the state itself too, where it is the same.
+ * Shared by all are the head, electrodes left out or interpolated, and that a head is unusual.
+ */
+interface Decomposition {
+  id: number;
+  name: string;
+  /** Whose it is, empty where that is not known. */
+  subject: string;
+  /** Reduction of mutual information that the user has for it. */
+  information: number | null;
   inputs: Inputs;
   settings: PageSettings;
   example: ExampleTitle | null;
+  /** Without a sheet while it is not the current one. */
+  answer: Answer | null;
+  failure: Fault | null;
+}
+
+/** All decompositions before a change. */
+interface Step {
+  decompositions: Decomposition[];
+  current: number;
   setAside: SessionState["setAside"];
   /** What the change was of. */
   what: string[];
@@ -511,6 +563,12 @@ interface SessionState {
   example: ExampleTitle | null;
   /** What the invented map has replaced. */
   setAside: { inputs: Inputs; settings: PageSettings } | null;
+  /** All there are, the current one among them; there is always one. */
+  decompositions: Decomposition[];
+  /** The current one's id. */
+  current: number;
+  /** Columns of the table of maps. */
+  columns: TableColumn[];
   answer: Answer | null;
   failure: Fault | null;
   /** Label of the electrode that is pointed at, wherever on the page. */

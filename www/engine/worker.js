@@ -64,9 +64,12 @@ function breathe() {
 
 /** @param {ReportMap} map @returns {MapSummary} */
 function summaryOf(map) {
-  return "error" in map
-    ? { name: harmless(map.name), error: /** @type {UnfittedMap} */ (map).error }
-    : { name: harmless(map.name), rv: map.residual_variance };
+  const name = harmless(map.name);
+  if ("error" in map) return { name, error: /** @type {UnfittedMap} */ (map).error };
+  const { dipole, residual_variance: rv, ...rest } = /** @type {any} */ (map);
+  const power = rest.measured.reduce((/** @type {number} */ sum, /** @type {number} */ v) => sum + v * v, 0) / rest.measured.length;
+  const variance = rest.activation_sd === null ? null : power * rest.activation_sd ** 2;
+  return { ...rest, ...dipole, name, rv, power, variance, region: "", cells: [], measured: undefined, projected: undefined, residual: undefined };
 }
 
 /**

@@ -7,6 +7,7 @@ import { makeStore } from "./store.js";
 import { faultOf } from "../engine/fault.js";
 import { pageFault } from "../text/faults.js";
 import { heldBytes, isEmpty, namedFiles, NO_INPUTS, placedInputs, toldRoles } from "./inputs.js";
+import { emptyDecomposition, mirrored } from "./decompositions.js";
 import { isMisfit, isUnreadable } from "./help.js";
 import { differingSettings, firstLine, FIRST_SETTINGS, isOtherTable, sentSettings, settingsForOther } from "./settings.js";
 import { settingsOfFiles, settingsWith, withTurned, withValueAt } from "./settings.js";
@@ -27,13 +28,8 @@ function isRole(path) {
   return path[0] === "files" && path[2] === "role";
 }
 
-/** @param {SessionState} state @returns {Step} */
-function stepOf({ inputs, settings, example, setAside }) {
-  return { inputs, settings, example, setAside, what: [] };
-}
-
 export function makeSession() {
-  const store = makeStore(
+  const held = makeStore(
     /** @type {SessionState} */ ({
       phase: "loading",
       program: null,
@@ -47,6 +43,9 @@ export function makeSession() {
       offers: [],
       example: null,
       setAside: null,
+      decompositions: [emptyDecomposition(1)],
+      current: 1,
+      columns: [],
       answer: null,
       failure: null,
       pointed: null,
@@ -54,6 +53,17 @@ export function makeSession() {
       stopped: false,
     }),
   );
+
+  const store = {
+    ...held,
+    /** @param {Partial<SessionState>} patch */
+    write(patch) {
+      const state = { ...held.read(), ...patch };
+      const decompositions = mirrored(state);
+      const same = decompositions.every((one, at) => one === state.decompositions[at]);
+      held.write(same ? patch : { ...patch, decompositions });
+    },
+  };
 
   /** @type {EngineClient | null} */
   let client = null;
@@ -89,6 +99,11 @@ export function makeSession() {
     pending = null;
   }
 
+  /** @param {SessionState} state @param {string[]} what @returns {Step} */
+  function stepOf({ decompositions, current, setAside }, what) {
+    return { decompositions: decompositions.map((one) => ({ ...one, answer: null })), current, setAside, what };
+  }
+
   /**
    * One change of inputs or settings, which can be undone.
    * @param {Partial<SessionState>} patch
@@ -96,8 +111,9 @@ export function makeSession() {
    */
   function step(patch, what) {
     const state = store.read();
-    const steps = [...state.past.slice(1 - MOST_STEPS), { ...stepOf(state), what }];
-    while (steps.length > 1 && heldBytes(steps.map(({ inputs }) => inputs)) > MOST_PAST_BYTES) steps.shift();
+    const steps = [...state.past.slice(1 - MOST_STEPS), stepOf(state, what)];
+    const held = () => heldBytes(steps.flatMap(({ decompositions }) => decompositions.map(({ inputs }) => inputs)));
+    while (steps.length > 1 && held() > MOST_PAST_BYTES) steps.shift();
     store.write({ past: steps, said: null, refused: null, changed: [], ...patch });
   }
 
@@ -457,8 +473,12 @@ export function makeSession() {
       const { past } = store.read();
       const last = past.at(-1);
       if (last === undefined) return;
-      const { what, ...before } = last;
-      store.write({ ...before, past: past.slice(0, -1), changed: [], said: null, refused: null });
+      const { decompositions, current, setAside } = last;
+      const live = store.read().decompositions;
+      const restored = decompositions.map((one) => ({ ...one, answer: live.find(({ id }) => id === one.id)?.answer ?? null }));
+      const { inputs, settings, example } = restored.find(({ id }) => id === current) ?? restored[0];
+      const back = { decompositions: restored, current, inputs, settings, example, setAside };
+      store.write({ ...back, past: past.slice(0, -1), changed: [], said: null, refused: null });
       ask();
     },
 
