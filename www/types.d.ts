@@ -308,6 +308,7 @@ interface GlueStudy {
   fit(index: number): ReportMap;
   /** Fits from `first` on for about so long, a few maps at least. */
   fitWithin(first: number, milliseconds: number): ReportMap[];
+  fits(first: number, last: number): Float64Array;
   assess(index: number, what: string[]): object;
   sheet(index: number): Sheet;
   /** The same tables under other settings; nothing is read again. */
@@ -342,6 +343,8 @@ interface Study {
   readonly understood: Understood;
   readonly count: number;
   fit(index: number): ReportMap;
+  /** Fits as numbers alone, eight for each map from `first` to before `last`. */
+  fits(first?: number, last?: number): Float64Array;
   assess(index: number, what: string[]): object;
   /** The same tables under other settings; nothing is read again. Both studies go on and are closed one by one. */
   with(settings: EngineSettings): Study;

@@ -206,6 +206,31 @@ test("a map that cannot be fitted stands among the others with its error", () =>
   assert.equal(thrown(() => engine.analyse({ maps: table(() => 7) })).code, "map-constant");
 });
 
+test("numbers alone are those of the report, in any slices", () => {
+  const maps = table((i) => Math.sin(i), () => 7, (i) => (i === 3 ? "n/a" : i % 5), (i) => Math.cos(i * i), (i) => i % 7);
+  const study = engine.open({ maps, settings: { flip: [3], mapUnit: "V", activationSd: [1, 1, 1, 3, 1] } });
+  const close = (a, b) => assert.ok(Math.abs(a - b) <= 1e-14 * Math.abs(b), `${a}, not ${b}`);
+  const all = study.fits();
+  assert.ok(all instanceof Float64Array);
+  assert.deepEqual([...study.fits(0, 2), ...study.fits(2, 5)], [...all]);
+  assert.equal(study.fits(5).length, 0);
+  for (let index = 0; index < study.count; index++) {
+    const [x, y, z, mx, my, mz, rv, stopped] = all.subarray(8 * index);
+    const map = study.fit(index);
+    if ("error" in map) {
+      assert.ok(all.subarray(8 * index, 8 * index + 8).every(Number.isNaN));
+      continue;
+    }
+    const { canonical_mm, canonical_direction, strength } = map.dipole;
+    [x, y, z].forEach((v, i) => close(v * study.head.radius_mm, canonical_mm[i]));
+    close(Math.hypot(mx, my, mz), strength);
+    [mx, my, mz].forEach((v, i) => close(v / strength, canonical_direction[i]));
+    assert.equal(rv, map.residual_variance);
+    assert.equal(["converged", "boundary", "iteration-limit"][stopped], map.fit.stopped_because);
+  }
+  for (const ends of [[0, 6], [-1, 2], [0.5, 1], ["0", 1]]) assert.equal(thrown(() => study.fits(...ends)).code, "map-index");
+});
+
 test("what is absent is null, never missing", () => {
   const report = engine.analyse({ maps: table((i) => Math.sin(i), () => 7) });
   assertReport(report);
@@ -233,7 +258,7 @@ test("settings that are undefined are as good as absent", () => {
 test("unknown settings are refused", () => {
   const refused = [
     { colour: "red" },
-    { mapUnit: "mV" },
+    { mapUnit: "V" },
     { exclude: "Cz" },
     { exclude: [3] },
     { assess: ["everything"] },

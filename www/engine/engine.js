@@ -144,6 +144,7 @@ export function makeEngine(compiled) {
     return {
       ...facts,
       fit: (index) => use((opened) => opened.fit(index)),
+      fits: (first = 0, last = facts.count) => use((opened) => opened.fits(first, last)),
       assess: (index, what) => use((opened) => opened.assess(index, what)),
       with(settings) {
         const first = use((opened, glue) => ({ glue, study: opened.with(settings) }));

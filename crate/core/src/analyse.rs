@@ -5,7 +5,7 @@ mod tables;
 use crate::assess::{adjusted_residual_variance, degrees_of_freedom};
 use crate::electrode::{Label, nearest_site};
 use crate::finding::{Code, Error, Finding, Place};
-use crate::fit::{BATCH, Fit, Fitter};
+use crate::fit::{BATCH, Fit, Fitter, Stopped};
 use crate::forward::LeadField;
 use crate::head::{Shells, catalogued};
 use crate::map::{MapUnit, average_referenced, hints_at_laplacian};
@@ -236,11 +236,30 @@ impl Study {
     /// # Errors
     /// `map-index` if one of them does not exist.
     pub fn fit_range(&self, range: Range<usize>) -> Result<Vec<MapReport>, Error> {
-        if range.end > self.count() {
-            return Err(self.no_map(range.end.saturating_sub(1)));
-        }
+        self.check(&range)?;
         let outcomes = range.clone().zip(self.outcomes(range));
         Ok(outcomes.map(|(index, outcome)| self.reported(index, outcome)).collect())
+    }
+
+    /// The same in numbers alone, eight for each map: canonical position in scalp radii, moment with the size and the sign
+    /// that the report gives it, residual variance, and 0 for a minimum, 1 on the boundary, 2 for a search that was cut
+    /// short. Not a number where a map cannot be fitted.
+    ///
+    /// # Errors
+    /// `map-index` if one of them does not exist.
+    pub fn fits(&self, range: Range<usize>) -> Result<Vec<[f64; 8]>, Error> {
+        self.check(&range)?;
+        Ok(self.batches(range, |index, _, fit| {
+            let Some(fit) = fit else { return [f64::NAN; 8] };
+            let size = self.settings.map_unit.microvolts() * self.settings.activation_sd(index).unwrap_or(1.0);
+            let ([x, y, z], [mx, my, mz]) = (fit.position.0, (fit.moment * (self.sign(index) * size)).0);
+            let stopped = match fit.stopped {
+                Stopped::Converged => 0.0,
+                Stopped::Boundary => 1.0,
+                Stopped::IterationLimit => 2.0,
+            };
+            [x, y, z, mx, my, mz, fit.residual_variance, stopped]
+        }))
     }
 
     /// Adds what `what` names to the fit of one map: nothing can be named yet.
@@ -317,24 +336,40 @@ impl Study {
         if self.settings.flipped(index) { -1.0 } else { 1.0 }
     }
 
+    fn check(&self, range: &Range<usize>) -> Result<(), Error> {
+        if range.end > self.count() { Err(self.no_map(range.end.saturating_sub(1))) } else { Ok(()) }
+    }
+
     fn no_map(&self, index: usize) -> Error {
         Finding::new(Code::MapIndex).at(Place::input("maps")).with("index", index).with("count", self.count()).into()
     }
 
     fn outcomes(&self, range: Range<usize>) -> Vec<Result<FittedMap, Error>> {
-        let mut outcomes = Vec::with_capacity(range.len());
+        self.batches(range, |index, map, fit| {
+            let map = map.as_ref().map_err(Error::clone)?;
+            let fit = fit.ok_or_else(|| self.constant(index))?;
+            Ok(self.fitted(index, map, &fit))
+        })
+    }
+
+    /// What `make` makes of each map, by its values at the used electrodes and the fit that it may have.
+    fn batches<T>(
+        &self,
+        range: Range<usize>,
+        make: impl Fn(usize, &Result<Vec<f64>, Error>, Option<Fit>) -> T,
+    ) -> Vec<T> {
+        let mut made = Vec::with_capacity(range.len());
         for first in range.clone().step_by(BATCH) {
             let batch = first..range.end.min(first + BATCH);
             let values: Vec<Result<Vec<f64>, Error>> = batch.clone().map(|index| self.values(index)).collect();
             let readable: Vec<&[f64]> = values.iter().flatten().map(Vec::as_slice).collect();
             let mut fits = self.fitter.fit_batch(&readable).into_iter();
-            outcomes.extend(batch.zip(&values).map(|(index, map)| {
-                let map = map.as_ref().map_err(Error::clone)?;
-                let fit = fits.next().flatten().ok_or_else(|| self.constant(index))?;
-                Ok(self.fitted(index, map, &fit))
+            made.extend(batch.zip(&values).map(|(index, map)| {
+                let fit = map.as_ref().ok().and_then(|_| fits.next().flatten());
+                make(index, map, fit)
             }));
         }
-        outcomes
+        made
     }
 
     fn reported(&self, index: usize, outcome: Result<FittedMap, Error>) -> MapReport {

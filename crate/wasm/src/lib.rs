@@ -135,6 +135,13 @@ impl Study {
         Ok(reports)
     }
 
+    /// Fits of the maps from `first` to before `last` as numbers alone, eight for each; see `Study::fits` of the core.
+    pub fn fits(&self, first: JsValue, last: JsValue) -> Result<Vec<f64>, JsValue> {
+        let [first, last] = [first, last].map(|bound| wire::end(&bound, self.0.count()));
+        let fits = self.0.fits(first?..last?).map_err(|error| thrown(&error))?;
+        Ok(fits.into_iter().flatten().collect())
+    }
+
     /// The fit of one map with what is named added to it.
     pub fn assess(&self, index: JsValue, what: JsValue) -> Result<JsValue, JsValue> {
         let index = wire::index(&index, self.0.count())?;

@@ -158,6 +158,11 @@ pub(crate) fn index(value: &JsValue, count: usize) -> Result<usize, JsValue> {
     }
 }
 
+/// The same for where maps end: one after the last.
+pub(crate) fn end(value: &JsValue, count: usize) -> Result<usize, JsValue> {
+    if value.as_f64() == Some(count as f64) { Ok(count) } else { index(value, count) }
+}
+
 /// A value as plain objects, arrays, numbers, strings, booleans and `null`.
 pub(crate) fn plain(value: &impl Serialize) -> Result<JsValue, JsValue> {
     Ok(value.serialize(&serde_wasm_bindgen::Serializer::json_compatible())?)
