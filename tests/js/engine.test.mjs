@@ -258,7 +258,7 @@ test("settings that are undefined are as good as absent", () => {
 test("unknown settings are refused", () => {
   const refused = [
     { colour: "red" },
-    { mapUnit: "V" },
+    { mapUnit: "mV" },
     { exclude: "Cz" },
     { exclude: [3] },
     { assess: ["everything"] },
