@@ -23,6 +23,7 @@ import { showTerms } from "./views/terms.js";
 import { showUnderstood } from "./views/understood.js";
 import { showUndo } from "./views/undo.js";
 
+need("unstarted", HTMLElement).remove();
 const session = makeSession();
 
 addEventListener("error", (event) => {

@@ -332,6 +332,12 @@ interface Glue {
 /** The glue's text is put before the worker and the module by the build; each call gives a fresh instance. */
 declare function wasmGlue(): Glue;
 
+/** The invented maps, with the content of every file they name; put before the page's script by the build. */
+declare const EXAMPLES: {
+  files: Record<string, string>;
+  list: (Omit<Example, "maps" | "electrodes"> & { maps: string; electrodes: string | null })[];
+};
+
 /** The engine itself, packed; put before the module by the build. */
 declare const WASM_PACKED: string;
 

@@ -28,21 +28,28 @@ impl Variant {
         Self(format!("{}{packed}{}", &self.0[..start], &self.0[end..]))
     }
 
-    /// Adds script text to the page's own script and admits the longer script in the policy.
+    /// Changes the page's packed script without telling the policy.
+    pub fn with_unannounced_packed_script(self) -> Self {
+        let (start, end) = self.carried("script");
+        let packed = packed(&format!("{}\n//\n", self.script()));
+        Self(format!("{}{packed}{}", &self.0[..start], &self.0[end..]))
+    }
+
+    /// Adds script text to the one that loads the page's and admits the longer script in the policy.
     pub fn with_script(self, added: &str) -> Self {
-        let start = self.page_script_start();
+        let start = self.loader_start();
         let end = start + self.0[start..].find("</script>").expect("the page's script ends");
         let old = &self.0[start..end];
         let new = format!("{old}\n{added}\n");
         let (before, after) = (hash(old), hash(&new));
-        assert!(self.0.contains(&before), "the policy admits the page's script by its hash");
+        assert!(self.0.contains(&before), "the policy admits the script by its hash");
         let text = format!("{}{new}{}", &self.0[..start], &self.0[end..]);
         Self(text.replace(&before, &after))
     }
 
-    /// Changes the page's own script without telling the policy.
+    /// Changes the script that loads the page's without telling the policy.
     pub fn with_unannounced_script(self) -> Self {
-        let start = self.page_script_start();
+        let start = self.loader_start();
         Self(format!("{}\n//\n{}", &self.0[..start], &self.0[start..]))
     }
 
@@ -67,8 +74,8 @@ impl Variant {
         folder.write("inward.html", &self.0)
     }
 
-    /// The page's own script is the last one; those before it carry data.
-    fn page_script_start(&self) -> usize {
+    /// The script that loads the page's is the last one; those before it carry data.
+    fn loader_start(&self) -> usize {
         let tag = self.0.rfind("<script").expect("the page has a script");
         tag + self.0[tag..].find('>').expect("a tag ends") + 1
     }
@@ -78,6 +85,12 @@ impl Variant {
         let tag = self.0.find(&format!("id=\"{id}\">")).expect("the page carries that");
         let start = tag + self.0[tag..].find('>').expect("a tag ends") + 1;
         (start, start + self.0[start..].find('<').expect("the script ends"))
+    }
+
+    /// The page's script.
+    pub fn script(&self) -> String {
+        let (start, end) = self.carried("script");
+        unpacked(&self.0[start..end])
     }
 
     /// The worker's script.

@@ -273,6 +273,10 @@ fn a_blocked_script_is_noticed(browser: Browser) {
     let waited = page.wait_for_within("ready", Duration::from_secs(5));
     assert!(waited.is_err(), "a page whose script the policy refuses never gets ready");
     assert_eq!(page.state(), "loading");
+    drop(page);
+    let page = Page::load(browser, &Variant::delivered().with_unannounced_packed_script().write(&folder));
+    page.until("the refusal", |page| page.state() == "failed");
+    assert!(page.text("#unstarted").contains("not as it was built"));
 }
 
 fn everything_works_by_keyboard(browser: Browser) {

@@ -113,7 +113,7 @@ fn the_policy_is_the_strict_one() {
         "base-uri 'none'",
         "form-action 'none'",
         "require-trusted-types-for 'script'",
-        "trusted-types pool",
+        "trusted-types page pool",
     ] {
         assert!(policy.contains(part), "{part} is missing in {policy}");
     }
@@ -126,17 +126,20 @@ fn the_policy_is_the_strict_one() {
 #[test]
 fn the_bundle_holds_no_way_around_the_policy() {
     let page = Variant::delivered();
-    // What is packed is no script; the worker's one is looked at as it runs.
-    let packed = ["id=\"wasm\"", "id=\"notices", "id=\"worker\""];
+    // What is packed is no script; those of page and worker are looked at as they run.
+    let packed = ["id=\"wasm\"", "id=\"notices", "id=\"worker\"", "id=\"script\""];
     let scripts: String = page
         .text()
         .split("<script")
         .skip(1)
         .filter(|part| part.split('>').next().is_some_and(|tag| !packed.iter().any(|id| tag.contains(id))))
         .map(|part| part.split("</script>").next().unwrap_or_default())
-        .chain([page.worker().as_str()])
+        .chain([page.worker().as_str(), page.script().as_str()])
         .collect();
-    assert!(page.worker().contains("postMessage") && scripts.len() > 10_000, "the scripts were found");
+    assert!(
+        page.worker().contains("postMessage") && page.script().contains("addEventListener") && scripts.len() > 10_000,
+        "the scripts were found"
+    );
     for way in [
         "window.open",
         "location.href",

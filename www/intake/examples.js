@@ -2,12 +2,11 @@
 
 /** @returns {Example[]} */
 export function carriedExamples() {
-  const carried = JSON.parse(document.getElementById("examples")?.textContent ?? "{}");
-  /** @param {string | null} name */
-  const file = (name) => (name === null ? null : { name, content: carried.files[name] });
-  return (carried.list ?? []).map((/** @type {any} */ example) => ({
+  /** @param {string} name */
+  const file = (name) => ({ name, content: EXAMPLES.files[name] });
+  return EXAMPLES.list.map((example) => ({
     ...example,
     maps: file(example.maps),
-    electrodes: file(example.electrodes),
+    electrodes: example.electrodes === null ? null : file(example.electrodes),
   }));
 }

@@ -10,10 +10,6 @@ const PAGE_FAULTS = {
     message: "This browser does not let the page start a worker, where the computation runs.",
     hint: "Open the file in a current browser, outside of a frame that forbids scripts.",
   },
-  "unpacking-unavailable": {
-    message: "This browser cannot unpack the engine that the page carries: it lacks DecompressionStream.",
-    hint: "Open the file in a current browser; those of 2023 and later can.",
-  },
   "worker-lost": {
     message: "The browser ended the worker in which the computation ran, perhaps for lack of memory.",
     hint: "Close other tabs or split a large table, then give the map again: it gets a fresh worker.",

@@ -1,7 +1,7 @@
 //! What is delivered: `inward.html` and `engine/inward.mjs`.
 
 use crate::bundle::Modules;
-use crate::engine::{module, page_script, worker_script};
+use crate::engine::{loader_script, module, page_script, worker_script};
 use crate::examples::examples;
 use crate::notices::notices;
 use crate::packed::packed;
@@ -19,6 +19,8 @@ pub struct Dist {
     pub carried: String,
     /// The page.
     pub page: String,
+    /// The script that unpacks the page's.
+    pub loader: String,
     /// The page's script.
     pub script: String,
     /// The worker's script.
@@ -33,15 +35,17 @@ pub fn build(workspace: &Workspace) -> Result<Dist> {
     let www = workspace.root.join("www");
     let modules = Modules::read(&www).context("in www")?;
     let carried = packed(&compiled.wasm)?;
-    let script = page_script(&modules.join("main.js")?)?;
+    let loader = loader_script(&modules.join("load.js")?)?;
+    let script = page_script(&modules.join("main.js")?, &examples(&workspace.root.join("example_maps"))?)?;
     let worker = worker_script(&modules.join("engine/worker.js")?, &compiled.glue)?;
     let parts = Parts {
         style: &styles(&www.join("style"))?,
+        loader: &loader,
         script: &script,
+        packed: &packed(script.as_bytes())?,
         worker: &packed(worker.as_bytes())?,
         wasm: &carried,
         notices: &packed(notices(workspace)?.as_bytes())?,
-        examples: &examples(&workspace.root.join("example_maps"))?,
     };
     let page = page(&read(&www.join("index.html"))?, &parts)?;
     let module = module(&modules.join("engine/module.js")?, &compiled.glue, &carried);
@@ -53,7 +57,7 @@ pub fn build(workspace: &Workspace) -> Result<Dist> {
     if page.len() > LIMIT {
         bail!("inward.html is larger than {LIMIT} bytes");
     }
-    Ok(Dist { compiled, carried, page, script, worker, module })
+    Ok(Dist { compiled, carried, page, loader, script, worker, module })
 }
 
 /// All style sheets in the order of their names.

@@ -9,14 +9,23 @@ fn wasm_glue(glue: &str) -> String {
     format!("function wasmGlue() {{\n{}\nreturn wasm_bindgen;\n}}\n", glue.trim())
 }
 
-/// The page's script: classic, since a module script cannot run from a file.
-pub fn page_script(joined: &Joined) -> anyhow::Result<String> {
-    terse(&format!("(() => {{\n\"use strict\";\n{}}})();", joined.code)).context("page script")
+/// The script that unpacks and runs the page's: classic, since a module script cannot run from a file.
+pub fn loader_script(joined: &Joined) -> anyhow::Result<String> {
+    classic("", joined).context("the script that loads the page's")
 }
 
-/// The worker's script: classic for the same reason.
+/// The page's script, with the invented maps inside.
+pub fn page_script(joined: &Joined, examples: &str) -> anyhow::Result<String> {
+    classic(&format!("const EXAMPLES = {examples};\n"), joined).context("page script")
+}
+
+/// The worker's script.
 pub fn worker_script(joined: &Joined, glue: &str) -> anyhow::Result<String> {
-    terse(&format!("(() => {{\n\"use strict\";\n{}{}}})();", wasm_glue(glue), joined.code)).context("worker script")
+    classic(&wasm_glue(glue), joined).context("worker script")
+}
+
+fn classic(before: &str, joined: &Joined) -> anyhow::Result<String> {
+    terse(&format!("(() => {{\n\"use strict\";\n{before}{}}})();", joined.code))
 }
 
 /// `inward.mjs`: the entry's own exports, with the engine inside.

@@ -8,16 +8,18 @@ use sha2::{Digest, Sha256};
 pub struct Parts<'a> {
     /// All style sheets.
     pub style: &'a str,
-    /// The page's own script.
+    /// The script that unpacks and runs the page's own.
+    pub loader: &'a str,
+    /// The page's own script as it runs.
     pub script: &'a str,
+    /// The same, packed.
+    pub packed: &'a str,
     /// The worker's script, packed.
     pub worker: &'a str,
     /// The compiled module, packed.
     pub wasm: &'a str,
     /// The licence notices, packed.
     pub notices: &'a str,
-    /// The invented maps, as JSON.
-    pub examples: &'a str,
 }
 
 /// The largest page, in bytes, so that it stays a quick download and a small attachment.
@@ -26,16 +28,16 @@ pub const LIMIT: usize = 600_000;
 /// Puts the parts where the template's comments ask for them, each alone on its line.
 pub fn page(template: &str, parts: &Parts) -> Result<String> {
     let style = element("style", "", parts.style)?;
-    let script = element("script", "", parts.script)?;
-    let policy = policy(&content(parts.script), &content(parts.style));
+    let loader = element("script", "", parts.loader)?;
+    let policy = policy(&[&content(parts.loader), parts.script], &content(parts.style));
     let filled = [
         ("policy", format!("<meta http-equiv=\"Content-Security-Policy\" content=\"{policy}\">")),
         ("style", style),
         ("wasm", element("script", " type=\"text/plain\" id=\"wasm\"", parts.wasm)?),
         ("worker", element("script", " type=\"text/plain\" id=\"worker\"", parts.worker)?),
         ("notices", element("script", " type=\"text/plain\" id=\"notices-text\"", parts.notices)?),
-        ("examples", element("script", " type=\"application/json\" id=\"examples\"", parts.examples)?),
-        ("script", script),
+        ("script", element("script", " type=\"text/plain\" id=\"script\"", parts.packed)?),
+        ("loader", loader),
     ];
     let mut page = String::new();
     let mut left: Vec<&str> = filled.iter().map(|(name, _)| *name).collect();
@@ -58,15 +60,16 @@ pub fn page(template: &str, parts: &Parts) -> Result<String> {
     Ok(page)
 }
 
-/// What the browser may do with the file: run this very script and this very style, compile the module,
+/// What the browser may do with the file: run these very scripts and this very style, compile the module,
 /// start the worker from a blob, show and save pictures. No request leaves it.
-fn policy(script: &str, style: &str) -> String {
-    let hash = |text: &str| BASE64_STANDARD.encode(Sha256::digest(text));
+fn policy(scripts: &[&str], style: &str) -> String {
+    let hash = |text: &str| format!("'sha256-{}'", BASE64_STANDARD.encode(Sha256::digest(text)));
+    let scripts: Vec<String> = scripts.iter().map(|script| hash(script)).collect();
     format!(
-        "default-src 'none'; script-src 'sha256-{}' 'wasm-unsafe-eval'; style-src 'sha256-{}'; worker-src blob:; \
+        "default-src 'none'; script-src {} 'wasm-unsafe-eval'; style-src {}; worker-src blob:; \
          img-src data: blob:; base-uri 'none'; form-action 'none'; \
-         require-trusted-types-for 'script'; trusted-types pool",
-        hash(script),
+         require-trusted-types-for 'script'; trusted-types page pool",
+        scripts.join(" "),
         hash(style)
     )
 }
@@ -91,15 +94,23 @@ fn element(tag: &str, attributes: &str, text: &str) -> Result<String> {
 mod tests {
     use super::*;
 
-    const PARTS: Parts =
-        Parts { style: "a{}\n", script: "b();", worker: "c", wasm: "AA==", notices: "d", examples: "[]" };
+    const PARTS: Parts = Parts {
+        style: "a{}\n",
+        loader: "a();",
+        script: "b();",
+        packed: "BB==",
+        worker: "c",
+        wasm: "AA==",
+        notices: "d",
+    };
     const TEMPLATE: &str = "<head>\n  <!-- inward:policy -->\n<!-- inward:style -->\n</head>\n\
-        <!-- inward:wasm -->\n<!-- inward:worker -->\n<!-- inward:notices -->\n<!-- inward:examples -->\n\
-        <!-- inward:script -->\n";
+        <!-- inward:wasm -->\n<!-- inward:worker -->\n<!-- inward:notices -->\n<!-- inward:script -->\n\
+        <!-- inward:loader -->\n";
 
     #[test]
-    fn the_policy_holds_the_digests_of_what_stands_between_the_tags() {
+    fn the_policy_holds_the_digests_of_what_runs() {
         let page = page(TEMPLATE, &PARTS).unwrap();
+        assert!(page.contains(&BASE64_STANDARD.encode(Sha256::digest(PARTS.script))), "{page}");
         for (open, close) in [("<script>", "</script>"), ("<style>", "</style>")] {
             let text = page.split(open).nth(1).unwrap().split(close).next().unwrap();
             let digest = format!("'sha256-{}'", BASE64_STANDARD.encode(Sha256::digest(text)));

@@ -35,14 +35,17 @@ const NAMES: [&str; 23] = [
 /// Objects whose `open` opens a window.
 const WINDOWS: [&str; 7] = ["window", "self", "globalThis", "top", "parent", "frames", "document"];
 
-/// Looks through the three scripts, the page's markup and its style.
+/// Looks through the four scripts, the page's markup and its style.
 pub fn check(dist: &Dist) -> Result<()> {
     let mut found = Vec::new();
     // The packed engine is no text: any letters may follow each other in it.
     let module = dist.module.replacen(&dist.carried, "", 1);
-    for (name, script) in
-        [("page script", &dist.script), ("worker script", &dist.worker), ("engine/inward.mjs", &module)]
-    {
+    for (name, script) in [
+        ("loader", &dist.loader),
+        ("page script", &dist.script),
+        ("worker script", &dist.worker),
+        ("engine/inward.mjs", &module),
+    ] {
         found.extend(in_script(script)?.into_iter().map(|what| format!("{name}, line {what}")));
     }
     found.extend(in_markup(&dist.page).into_iter().map(|what| format!("inward.html, line {what}")));

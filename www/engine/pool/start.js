@@ -30,8 +30,6 @@ function workerAddresses() {
 
 export async function startClient() {
   if (typeof WebAssembly === "undefined") throw unavailable("wasm-unavailable", "WebAssembly is not defined");
-  if (typeof DecompressionStream === "undefined")
-    throw unavailable("unpacking-unavailable", "DecompressionStream is not defined");
   /** @type {WebAssembly.Module} */
   let module;
   try {
