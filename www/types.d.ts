@@ -185,6 +185,17 @@ interface UnfittedMap {
 
 type ReportMap = FittedMap | UnfittedMap;
 
+/**
+ * Small rasters of maps as they are measured, laid out as in a picture: shares of each map's limit, NaN beyond what is
+ * painted and all over for a map without values, whose limit is 0.
+ */
+interface Thumbnails {
+  size: number;
+  outline: Float32Array;
+  measured: Float32Array[];
+  limit: number[];
+}
+
 interface ChoiceOption {
   value: ChoiceValue;
   label: string;
@@ -309,6 +320,10 @@ interface GlueStudy {
   /** Fits from `first` on for about so long, a few maps at least. */
   fitWithin(first: number, milliseconds: number): ReportMap[];
   fits(first: number, last: number): Float64Array;
+  /** The same as lines of a table, before `last`. */
+  rowsWithin(first: number, last: number, milliseconds: number): (MapRow | UnfittedMap)[];
+  /** Sizes 8 to 64; null where the electrodes carry no interpolation. */
+  thumbnails(indexes: number[], size: number): Thumbnails | null;
   assess(index: number, what: string[]): object;
   sheet(index: number): Sheet;
   /** The same tables under other settings; nothing is read again. */
@@ -325,6 +340,8 @@ interface Glue {
   /** What a file is, by its content. */
   roleOf(name: string, content: InwardContent): FileRole;
   heads(): CatalogueHead[];
+  /** Units that depend on the maps' are named together where none is given. */
+  columns(unit?: MapUnit): TableColumn[];
   choices(): ChoiceOffer[];
   program(): Program;
 }
@@ -356,6 +373,8 @@ interface Study {
   with(settings: EngineSettings): Study;
   close(): void;
   fitWithin(first: number, milliseconds: number): ReportMap[];
+  rowsWithin(first: number, last: number, milliseconds: number): (MapRow | UnfittedMap)[];
+  thumbnails(indexes: number[], size: number): Thumbnails | null;
   preamble(): InwardReport;
   sheet(index: number): Sheet;
 }
@@ -367,6 +386,7 @@ interface Engine {
   open(request: EngineRequest): Study;
   kindOf(content: InwardContent): InputKind;
   roleOf(name: string, content: InwardContent): FileRole;
+  columns(unit?: MapUnit): TableColumn[];
   choices(): ChoiceOffer[];
   program(): Program;
 }

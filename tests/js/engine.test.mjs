@@ -62,6 +62,8 @@ const KEYS = {
   understoodFile: "columns encoding format header name part passed_over role rows used",
   choice: "file from options path sentence setting value",
   labels: "interpolated matched not_scalp reference renamed without_position without_value",
+  row: "adjusted_rv at_boundary canonical_direction canonical_mm cells degrees_of_freedom depth_mm eccentricity flipped name nearest_site position_mm power radial_share region rv side strength variance",
+  columns: "name rv adjusted_rv x y z site side region depth eccentricity strength radial boundary variance",
   place: "byte column file input label line map",
 };
 
@@ -460,4 +462,33 @@ test("the wasm in module and page is the same and holds no path of the machine t
       assert.ok(!text.includes(path), `${path} stands in the bundle`);
     }
   }
+});
+
+test("rows are the fits as lines of a table, thumbnails their maps", () => {
+  const study = engine.open({ electrodes, maps, settings: { flip: [1] } });
+  const rows = [];
+  while (rows.length < study.count) rows.push(...study.rowsWithin(rows.length, study.count, 0));
+  const codes = engine.columns().map((column) => column.code);
+  assert.equal(codes.join(" "), KEYS.columns);
+  rows.forEach((row, index) => {
+    assertPlain(row, "row");
+    assertKeys(row, "row");
+    const map = study.fit(index);
+    assert.equal(row.rv, map.residual_variance);
+    assert.deepEqual(row.canonical_mm, map.dipole.canonical_mm);
+    assert.equal(row.cells.length, codes.length);
+    assert.equal(row.cells[0], map.name);
+  });
+  assert.equal(study.rowsWithin(1, 2, 1000).length, 1);
+  const thumbnails = study.thumbnails([1, 0], 16);
+  assert.equal(thumbnails.size, 16);
+  assert.ok(thumbnails.measured.every((raster) => raster instanceof Float32Array && raster.length === 256));
+  assert.ok(thumbnails.limit.every((limit) => limit > 0) && thumbnails.outline.length > 6);
+  const plain = engine.open({ electrodes, maps });
+  const unturned = plain.thumbnails([1], 16).measured[0];
+  assert.deepEqual(thumbnails.measured[0].filter(Number.isFinite), unturned.filter(Number.isFinite).map((value) => -value));
+  for (const call of [() => study.thumbnails([0], 4), () => study.thumbnails("0", 16), () => engine.columns("mV")]) {
+    assert.equal(thrown(call).code, "settings-unknown");
+  }
+  assert.equal(thrown(() => study.thumbnails([study.count], 16)).code, "map-index");
 });

@@ -157,6 +157,8 @@ export function makeEngine(compiled) {
         study = null;
       },
       fitWithin: (first, milliseconds) => use((opened) => opened.fitWithin(first, milliseconds)),
+      rowsWithin: (first, last, milliseconds) => use((opened) => opened.rowsWithin(first, last, milliseconds)),
+      thumbnails: (indexes, size) => use((opened) => opened.thumbnails(indexes, size)),
       preamble: () => use((opened) => opened.preamble()),
       sheet: (index) => use((opened) => opened.sheet(index)),
     };
@@ -170,6 +172,7 @@ export function makeEngine(compiled) {
     open: (request) => studyOn(request, () => keepRequest(request)),
     kindOf: (content) => call((current) => current.kindOf(content)),
     roleOf: (name, content) => call((current) => current.roleOf(name, content)),
+    columns: (unit) => call((current) => current.columns(unit)),
     choices: () => call((current) => current.choices()),
     program: () => call((current) => current.program()),
   };

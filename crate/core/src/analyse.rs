@@ -13,17 +13,14 @@ use crate::math::{Vec3, mean};
 use crate::placement::{Placed, Placement, Wishes, place};
 use crate::read::{Reading, read};
 use crate::report::{
-    Assessment, ChoiceReport, ElectrodeReport, EquivalentDipole, FittedMap, HeadReport, LabelsReport, MapReport, Note,
-    Program, Renamed, Report, SearchReport, Settings, Sheet, Site, UnderstoodReport,
+    Assessment, CENTRE_MM, ChoiceReport, ElectrodeReport, EquivalentDipole, FittedMap, HeadReport, LabelsReport,
+    MapReport, MapRow, Note, Program, Renamed, Report, SearchReport, Settings, Sheet, Site, UnderstoodReport,
 };
-use crate::scene::{Picture, Spline};
+use crate::scene::{Picture, Raster, Spline};
 use crate::understand::{ColumnsAre, Kind, Role, kind_of, role_of_files};
 use core::ops::Range;
-use std::sync::{Arc, OnceLock};
+use std::sync::{Arc, Mutex, OnceLock, PoisonError};
 use tables::Tables;
-
-/// Distance from the centre below which a position has no site above and no place seen from above.
-const CENTRE_MM: f64 = 5.0;
 
 /// What to analyse.
 #[derive(Clone, Debug, Default)]
@@ -83,7 +80,25 @@ pub struct Study {
     notes: Vec<Finding>,
     /// Made when the first picture is asked for.
     spline: OnceLock<Option<Spline>>,
+    /// Of the thumbnails that were asked for last.
+    raster: Arc<Mutex<Option<Raster>>>,
 }
+
+/// Small rasters of maps, without a fit.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Thumbnails {
+    /// Rows and columns of each.
+    pub size: usize,
+    /// Hull of the used electrodes on the disc.
+    pub outline: Vec<[f64; 2]>,
+    /// Values over the map's limit as in a [`Picture`]; NaN beyond what is painted, and all over for a map without values.
+    pub measured: Vec<Vec<f32>>,
+    /// Largest absolute value of each map at the used electrodes; 0 for one that is constant or lacks values.
+    pub limit: Vec<f64>,
+}
+
+/// Sizes of thumbnails.
+pub const THUMBNAIL_SIZES: core::ops::RangeInclusive<usize> = 8..=64;
 
 impl Study {
     /// Reads the inputs, places the electrodes on the head and prepares the search.
@@ -142,7 +157,8 @@ impl Study {
             None => (Arc::new(Fitter::new(LeadField::new(&shells, radius, directions))), OnceLock::new()),
         };
         let notes = tables.understood.notes.iter().chain(&placement.notes).cloned().collect();
-        let mut study = Self { tables, settings, placement, shells, fitter, notes, spline };
+        let raster = Arc::default();
+        let mut study = Self { tables, settings, placement, shells, fitter, notes, spline, raster };
         study.note_the_rest();
         Ok(study)
     }
@@ -288,10 +304,56 @@ impl Study {
         Sheet::new(map, &self.head(), &sites, self.settings.map_unit)
     }
 
+    /// A fitted map as a line of a table.
+    pub fn row(&self, map: &FittedMap) -> MapRow {
+        MapRow::new(map, self.placement.sphere.sphere.radius, self.settings.map_unit)
+    }
+
+    /// Small rasters of maps as they are measured, signs turned as the settings say, by one matrix for all maps; `None` if
+    /// the electrodes cannot carry an interpolation.
+    ///
+    /// # Errors
+    /// `map-index`, and `settings-unknown` for a size beyond [`THUMBNAIL_SIZES`].
+    pub fn thumbnails(&self, indexes: &[usize], size: usize) -> Result<Option<Thumbnails>, Error> {
+        if let Some(&index) = indexes.iter().find(|index| **index >= self.count()) {
+            return Err(self.no_map(index));
+        }
+        if !THUMBNAIL_SIZES.contains(&size) {
+            let [least, most] = [THUMBNAIL_SIZES.start(), THUMBNAIL_SIZES.end()];
+            return Err(Settings::unknown(format!("the size of thumbnails is a whole number from {least} to {most}")));
+        }
+        let Some(spline) = self.spline() else { return Ok(None) };
+        let mut kept = self.raster.lock().unwrap_or_else(PoisonError::into_inner);
+        let electrodes = || self.placement.electrodes.iter().zip(self.directions()).map(|(e, d)| (d, e.used));
+        let raster = match kept.take().filter(|raster| raster.size() == size) {
+            Some(raster) => raster,
+            None => Raster::new(spline, electrodes(), size),
+        };
+        let raster = kept.insert(raster);
+        let mut thumbnails =
+            Thumbnails { size, outline: raster.outline().to_vec(), measured: Vec::new(), limit: Vec::new() };
+        for &index in indexes {
+            let (pixels, limit) = match self.values(index).ok().and_then(|values| normalise(&values)) {
+                Some((map, limit)) => {
+                    let sign = self.sign(index);
+                    let map: Vec<f64> = map.iter().map(|value| sign * value).collect();
+                    (raster.paint(spline, &map), limit)
+                }
+                None => (vec![f32::NAN; size * size], 0.0),
+            };
+            thumbnails.measured.push(pixels);
+            thumbnails.limit.push(limit);
+        }
+        Ok(Some(thumbnails))
+    }
+
+    fn spline(&self) -> Option<&Spline> {
+        self.spline.get_or_init(|| Spline::new(self.fitter.field().directions().to_vec())).as_ref()
+    }
+
     /// The picture of one fitted map; `None` if the electrodes cannot carry an interpolation.
     pub fn picture(&self, map: &FittedMap) -> Option<Picture> {
-        let directions = || self.fitter.field().directions().to_vec();
-        let spline = self.spline.get_or_init(|| Spline::new(directions())).as_ref()?;
+        let spline = self.spline()?;
         let electrodes = self
             .placement
             .electrodes
@@ -501,4 +563,16 @@ impl Study {
             self.notes.push(Finding::new(Code::SeriesOnly));
         }
     }
+}
+
+/// The average-referenced map over its largest absolute value, and that value; `None` for a map that is constant to
+/// rounding.
+fn normalise(map: &[f64]) -> Option<(Vec<f64>, f64)> {
+    /// Of the largest value as given: what no fit takes for a map either.
+    const ROUNDING: f64 = 1e-12;
+    let largest = |map: &[f64]| map.iter().fold(0.0f64, |most, value| most.max(value.abs()));
+    let centred = average_referenced(map);
+    let limit = largest(&centred);
+    let told = limit > ROUNDING * largest(map) && limit.is_finite();
+    told.then(|| (centred.iter().map(|value| value / limit).collect(), limit))
 }

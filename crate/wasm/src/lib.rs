@@ -53,6 +53,14 @@ pub fn choices() -> Result<JsValue, JsValue> {
     plain(&inward_core::report::offered())
 }
 
+/// The columns of the table of maps, for maps of this unit or of any.
+#[wasm_bindgen]
+pub fn columns(unit: JsValue) -> Result<JsValue, JsValue> {
+    let unit =
+        serde_wasm_bindgen::from_value(unit).map_err(|_| thrown(&Settings::unknown(misunderstood("mapUnit"))))?;
+    plain(&inward_core::report::columns(unit))
+}
+
 /// The report of `{ electrodes?, maps, settings? }` or `{ files: [{ name, content }], settings? }`.
 #[wasm_bindgen]
 pub fn analyse(request: JsValue) -> Result<JsValue, JsValue> {
@@ -119,13 +127,32 @@ impl Study {
     /// answer other messages in between.
     #[wasm_bindgen(js_name = fitWithin)]
     pub fn fit_within(&self, first: usize, milliseconds: f64) -> Result<Array, JsValue> {
+        self.within(first, self.0.count(), milliseconds, |report| plain(&report))
+    }
+
+    /// The same as lines of a table, before `last`.
+    #[wasm_bindgen(js_name = rowsWithin)]
+    pub fn rows_within(&self, first: usize, last: usize, milliseconds: f64) -> Result<Array, JsValue> {
+        self.within(first, last.min(self.0.count()), milliseconds, |report| match report {
+            MapReport::Fitted(map) => plain(&self.0.row(&map)),
+            failed => plain(&failed),
+        })
+    }
+
+    fn within(
+        &self,
+        first: usize,
+        last: usize,
+        milliseconds: f64,
+        shape: impl Fn(MapReport) -> Result<JsValue, JsValue>,
+    ) -> Result<Array, JsValue> {
         let clock = Clock::start();
         let reports = Array::new();
         let mut next = first;
-        while next < self.0.count() {
-            let end = self.0.count().min(next + BATCH);
+        while next < last {
+            let end = last.min(next + BATCH);
             for report in self.0.fit_range(next..end).map_err(|error| thrown(&error))? {
-                reports.push(&plain(&report)?);
+                reports.push(&shape(report)?);
             }
             next = end;
             if clock.milliseconds() >= milliseconds {
@@ -140,6 +167,14 @@ impl Study {
         let [first, last] = [first, last].map(|bound| wire::end(&bound, self.0.count()));
         let fits = self.0.fits(first?..last?).map_err(|error| thrown(&error))?;
         Ok(fits.into_iter().flatten().collect())
+    }
+
+    /// Small rasters of maps as they are measured; `null` where the electrodes carry no interpolation.
+    pub fn thumbnails(&self, indexes: JsValue, size: usize) -> Result<JsValue, JsValue> {
+        let list = indexes.dyn_ref::<Array>().ok_or_else(|| thrown(&Settings::unknown(misunderstood("indexes"))))?;
+        let indexes = list.iter().map(|index| wire::index(&index, self.0.count())).collect::<Result<Vec<_>, _>>()?;
+        let thumbnails = self.0.thumbnails(&indexes, size).map_err(|error| thrown(&error))?;
+        Ok(thumbnails.map_or(JsValue::NULL, |thumbnails| picture::small(&thumbnails).into()))
     }
 
     /// The fit of one map with what is named added to it.

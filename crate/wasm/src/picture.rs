@@ -1,6 +1,7 @@
 //! Pictures as typed arrays.
 
 use crate::wire::set;
+use inward_core::Thumbnails;
 use inward_core::scene::{Contour, Layer, Picture};
 use js_sys::{Array, Float32Array, Float64Array, Object};
 use wasm_bindgen::JsValue;
@@ -48,6 +49,17 @@ pub(crate) fn to_js(picture: &Picture) -> Object {
         set(&result, name, Float32Array::from(&layer.raster[..]).into());
     }
     result
+}
+
+/// Thumbnails, likewise.
+pub(crate) fn small(thumbnails: &Thumbnails) -> Object {
+    let measured = thumbnails.measured.iter().map(|raster| JsValue::from(Float32Array::from(&raster[..])));
+    object(&[
+        ("size", (thumbnails.size as u32).into()),
+        ("outline", points(&thumbnails.outline).into()),
+        ("measured", measured.collect::<Array>().into()),
+        ("limit", thumbnails.limit.iter().map(|limit| JsValue::from(*limit)).collect::<Array>().into()),
+    ])
 }
 
 fn contour(contour: &Contour) -> Object {

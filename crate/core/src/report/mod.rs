@@ -4,12 +4,14 @@ mod choices;
 mod figure;
 mod messages;
 mod number;
+mod row;
 mod settings;
 mod sheet;
 
 pub use choices::{ChoiceOffer, ChoiceReport, OptionReport, offered};
 pub use figure::{Figure, FigureDipole, FigureShell};
 pub use messages::{hint, is_warning, message};
+pub use row::{Column, MapRow, columns};
 pub use settings::{Assessment, HeadSettings, Polarity, Settings};
 pub use sheet::{Alternative, HeadSheet, Row, Scale, Sheet, SheetElectrode, Site};
 
@@ -20,6 +22,9 @@ use crate::math::Vec3;
 use crate::understand::{ColumnsAre, FileFacts, Moments};
 use serde::Serialize;
 use std::collections::BTreeMap;
+
+/// Distance from the centre below which a position has no site above, no region and no place seen from above.
+pub const CENTRE_MM: f64 = 5.0;
 
 /// Everything about one table of maps. Every key is always present; what is absent is `null`.
 #[derive(Clone, Debug, PartialEq, Serialize)]

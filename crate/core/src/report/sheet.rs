@@ -472,14 +472,14 @@ fn described(what: &str, sites: &[&Site], value: fn(&Site) -> f64, unit: Written
 
 /// The unit in which values of a map are written, and what they are multiplied by for it.
 #[derive(Clone, Copy)]
-struct Written {
+pub(super) struct Written {
     name: &'static str,
-    factor: f64,
+    pub factor: f64,
 }
 
 impl Written {
     /// Volts are written as microvolts, which need no powers of ten.
-    fn of(unit: MapUnit) -> Self {
+    pub fn of(unit: MapUnit) -> Self {
         match unit {
             MapUnit::Microvolt => Self { name: "µV", factor: 1.0 },
             MapUnit::Volt => Self { name: "µV", factor: 1e6 },

@@ -3,11 +3,13 @@
 mod contour;
 mod disc;
 mod picture;
+mod raster;
 mod spline;
 
 pub use contour::Contour;
 pub use disc::DiscPoint;
 pub use picture::{Extremes, Layer, Picture, PictureElectrode, Ring};
+pub use raster::Raster;
 pub use spline::Spline;
 
 use contour::contours;

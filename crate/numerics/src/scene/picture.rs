@@ -75,7 +75,7 @@ pub struct PictureElectrode {
 const SIZE: usize = 96;
 
 /// How far beyond the outline the maps are computed, on the disc: two pixels.
-const MARGIN: f64 = 4.0 / SIZE as f64;
+pub(super) const MARGIN: f64 = 4.0 / SIZE as f64;
 
 /// Contour lines on each side of zero.
 const LEVELS: usize = 5;

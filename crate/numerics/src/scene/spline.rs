@@ -55,6 +55,12 @@ impl Spline {
         }
         values
     }
+
+    /// g of one direction for each electrode: what the coefficients c₁, c₂, … are multiplied by there.
+    pub(super) fn kernels(&self, direction: Vec3) -> impl Iterator<Item = f64> {
+        let table = table();
+        self.directions.iter().map(move |e| interpolated(table, direction.dot(*e)))
+    }
 }
 
 /// g and g′ times the step, at equal steps.
