@@ -352,7 +352,7 @@ declare function wasmGlue(): Glue;
 /** The invented maps, with the content of every file they name; put before the page's script by the build. */
 declare const EXAMPLES: {
   files: Record<string, string>;
-  list: (Omit<Example, "maps" | "electrodes"> & { maps: string; electrodes: string | null })[];
+  list: (Omit<Example, "maps" | "beside" | "electrodes"> & { maps: string; beside: string[]; electrodes: string | null })[];
 };
 
 /** The engine itself, packed; put before the module by the build. */
@@ -482,6 +482,8 @@ interface Example {
   /** Null or none where values have no unit. */
   unit?: MapUnit | null;
   maps: { name: string; content: string };
+  /** Further decompositions of the same recording. */
+  beside: { name: string; content: string }[];
   electrodes: { name: string; content: string } | null;
 }
 

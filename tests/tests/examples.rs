@@ -121,12 +121,34 @@ fn fog_is_not_one_dipole() {
     assert!(found.variance_explained < 0.5, "{}", found.variance_explained);
 }
 
+/// Unmixed into independent components, most planted sources come out; principal components are mixtures.
+#[test]
+fn the_night_is_unmixed_well_and_badly() {
+    let [independent, principal] = ["night_independent.tsv", "night_principal.tsv"].map(|file| {
+        let request = Request { maps: example(file).into_bytes().leak(), ..Request::default() };
+        analyse(&request).unwrap().maps.iter().map(|map| fitted(map).clone()).collect::<Vec<_>>()
+    });
+    let record: Value = serde_json::from_str(&data("example_night.json")).unwrap();
+    let found = |maps: &[FittedMap]| {
+        let near = |at: &Value| {
+            maps.iter().any(|map| {
+                map.residual_variance <= 0.15 && (map.dipole.canonical_mm - vector(&at["position_mm"])).norm() < 15.0
+            })
+        };
+        record["planted"].as_array().unwrap().iter().filter(|at| near(at)).count()
+    };
+    assert_eq!(record["planted"].as_array().unwrap().len(), 16);
+    assert_eq!((found(&independent), found(&principal)), (10, 0), "as the README says");
+    let near_dipolar = |maps: &[FittedMap]| maps.iter().filter(|map| map.residual_variance <= 0.15).count();
+    assert_eq!((near_dipolar(&independent), near_dipolar(&principal)), (15, 3));
+}
+
 #[test]
 fn the_watch_is_all_six_and_the_manifest_lists_every_file() {
     let manifest: Value = serde_json::from_str(&example("examples.json")).unwrap();
     let entries = manifest.as_array().unwrap();
     assert!(entries.len() >= 6);
-    let texts = |key: &str| -> Vec<&str> { entries.iter().map(|entry| entry[key].as_str().unwrap()).collect() };
+    let texts = |key: &str| -> Vec<&str> { entries.iter().filter_map(|entry| entry[key].as_str()).collect() };
     for key in ["name", "title", "line", "maps"] {
         let different: BTreeSet<&str> = texts(key).into_iter().collect();
         assert_eq!(different.len(), entries.len(), "every {key} is another");
@@ -138,12 +160,18 @@ fn the_watch_is_all_six_and_the_manifest_lists_every_file() {
         .map(|entry| entry.unwrap().file_name().into_string().unwrap())
         .filter(|name| name.ends_with(".tsv"))
         .collect();
-    let named: BTreeSet<String> = texts("maps").into_iter().chain(texts("electrodes")).map(String::from).collect();
+    let beside = entries.iter().filter_map(|entry| entry["beside"].as_array()).flatten().filter_map(Value::as_str);
+    let named: BTreeSet<String> =
+        texts("maps").into_iter().chain(texts("electrodes")).chain(beside).map(String::from).collect();
     assert_eq!(files, named);
 
     let whole = run(&example("watch_electrodes.tsv"), &example("watch_maps.tsv"), &[]);
-    let singles: Vec<FittedMap> =
-        texts("maps").iter().filter(|file| **file != "watch_maps.tsv").map(|file| fit(file, &[])).collect();
+    let of_the_watch = entries.iter().filter(|entry| entry["electrodes"] == "watch_electrodes.tsv");
+    let singles: Vec<FittedMap> = of_the_watch
+        .filter_map(|entry| entry["maps"].as_str())
+        .filter(|file| *file != "watch_maps.tsv")
+        .map(|file| fit(file, &[]))
+        .collect();
     assert_eq!(whole.maps.len(), singles.len());
     for (map, single) in whole.maps.iter().zip(&singles) {
         assert_eq!(fitted(map), single, "the same map alone and among the others");

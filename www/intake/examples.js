@@ -7,6 +7,7 @@ export function carriedExamples() {
   return EXAMPLES.list.map((example) => ({
     ...example,
     maps: file(example.maps),
+    beside: example.beside.map(file),
     electrodes: example.electrodes === null ? null : file(example.electrodes),
   }));
 }

@@ -6,7 +6,7 @@ use serde_json::{Value, json};
 use std::collections::BTreeMap;
 use std::path::Path;
 
-/// `{ files, list }`: the list of examples and, by name, the content of every file they name; one file or example a line.
+/// `{ files, list }`: the list of examples – maps, further tables of maps `beside`, electrodes – and, by name, the content of every file they name; one file or example a line.
 pub fn examples(folder: &Path) -> Result<String> {
     let list: Value = serde_json::from_str(&read(&folder.join("examples.json"))?).context("in examples.json")?;
     let list = list.as_array().context("examples.json is no list")?;
@@ -16,11 +16,9 @@ pub fn examples(folder: &Path) -> Result<String> {
         let text = |key: &str| {
             example[key].as_str().with_context(|| format!("an example in examples.json without {key}: {example}"))
         };
-        for key in ["maps", "electrodes"] {
-            if example[key].is_null() && key == "electrodes" {
-                continue;
-            }
-            let name = text(key)?;
+        let given = |key: &str| (!example[key].is_null()).then(|| text(key)).transpose();
+        let beside = example["beside"].as_array().into_iter().flatten().filter_map(Value::as_str);
+        for name in [text("maps")?].into_iter().chain(given("electrodes")?).chain(beside) {
             if Path::new(name).components().count() != 1 {
                 bail!("examples.json names {name}, which is not a file beside it");
             }
@@ -32,6 +30,7 @@ pub fn examples(folder: &Path) -> Result<String> {
             "line": text("line")?,
             "unit": example["unit"],
             "maps": example["maps"],
+            "beside": example["beside"].as_array().cloned().unwrap_or_default(),
             "electrodes": example["electrodes"],
         });
         lines.push(carried.to_string());
@@ -60,18 +59,23 @@ mod tests {
 
     #[test]
     fn files_are_carried_with_their_contents() {
-        let list = r#"[{"name": "a", "title": "A", "line": "b", "maps": "a.tsv", "electrodes": null}]"#;
+        let list =
+            r#"[{"name": "a", "title": "A", "line": "b", "maps": "a.tsv", "beside": ["a.tsv"], "electrodes": null}]"#;
         let text = carried(list).unwrap();
         assert!(!text.contains("</"));
         let list: Value = serde_json::from_str(&text).unwrap();
         assert_eq!(list["list"][0]["maps"], "a.tsv");
         assert_eq!(list["files"], json!({ "a.tsv": "Cz\t1\n</script>\n" }));
         assert_eq!(list["list"][0]["electrodes"], Value::Null);
+        assert_eq!(list["list"][0]["beside"], json!(["a.tsv"]));
     }
 
     #[test]
     fn incomplete_lists_are_refused() {
         assert!(carried(r#"[{"name": "a", "title": "A", "maps": "a.tsv"}]"#).is_err());
         assert!(carried(r#"[{"name": "a", "title": "A", "line": "b", "maps": "../a.tsv"}]"#).is_err());
+        assert!(
+            carried(r#"[{"name": "a", "title": "A", "line": "b", "maps": "a.tsv", "beside": ["b.tsv"]}]"#).is_err()
+        );
     }
 }
