@@ -1,6 +1,6 @@
 /** Puts the page together: one session, its views, and the engine. */
 
-import { startClient } from "./engine/pool/start.js";
+import { startPool } from "./engine/pool/start.js";
 import { takeDropsAndPastes } from "./intake/drop.js";
 import { makeSession } from "./session/session.js";
 import { writeWords } from "./text/words.js";
@@ -57,13 +57,14 @@ for (const show of [
 }
 takeDropsAndPastes(session, need("drop", HTMLElement));
 
-startClient()
+startPool()
   .then(async (client) =>
     session.engineReady(
       client,
       await client.ask({ kind: "program" }),
       await client.ask({ kind: "heads" }),
       await client.ask({ kind: "choices" }),
+      [],
     ),
   )
   .catch((error) => session.fail(error));

@@ -431,31 +431,58 @@ interface TableColumn {
 interface FitProgress {
   done: number;
   total: number;
-  maps: MapSummary[];
+}
+
+/** Where the session is at; `left` in seconds, once that can be told; `about` while not every table has been opened. */
+interface Progress extends FitProgress {
+  left: number | null;
+  about: boolean;
+}
+
+/**
+ * A request that the page has given a key. Where several decompositions share what is left out, `lenient` says that labels
+ * which this one does not have are not meant for it.
+ */
+interface NamedRequest extends EngineRequest {
+  lenient?: boolean;
 }
 
 /** The tables of a study that the worker holds, under other settings. */
 interface ChangedRequest {
   from: number;
   settings: EngineSettings;
+  lenient?: boolean;
 }
 
-/** Messages to the worker. `request` rides along with the first task that carries the study's key. */
+/** What is told of a table once it is opened. */
+interface OpenedStudy {
+  preamble: InwardReport;
+  count: number;
+}
+
+/** What is told while maps are fitted: at first the table, where it was not opened before, then maps from one on. */
+type PieceProgress = { study: OpenedStudy } | { first: number; maps: MapSummary[] };
+
+/** Messages to a worker: about itself, about a file, about studies by their keys. */
 type WorkerTask =
   | { kind: "program" }
   | { kind: "heads" }
   | { kind: "choices" }
   | { kind: "roleOf"; name: string; content: InwardContent }
-  | { kind: "open"; key: number; request?: EngineRequest | ChangedRequest }
-  | { kind: "fitAll"; key: number; request?: EngineRequest | ChangedRequest }
-  | { kind: "sheet"; key: number; request?: EngineRequest | ChangedRequest; index: number }
-  | { kind: "report"; key: number; request?: EngineRequest | ChangedRequest }
+  | { kind: "warm"; request: EngineRequest }
+  | { kind: "open"; key: number }
+  | { kind: "fit"; key: number; first: number; last: number | null; opening: boolean }
+  | { kind: "sheet"; key: number; index: number }
+  | { kind: "report"; key: number }
   | { kind: "close"; key: number };
 
-type WorkerMessage = WorkerTask & { id: number };
+/** `named`: requests of the studies that the task needs and the worker does not hold. */
+type WorkerMessage = WorkerTask & { id: number; named?: Record<number, NamedRequest | ChangedRequest> };
 
 type WorkerReply =
-  { id: number; value: unknown } | { id: number; progress: FitProgress } | { id: number; fault: Fault };
+  | { id: number; value: unknown }
+  | { id: number; progress: FitProgress | PieceProgress }
+  | { id: number; fault: Fault };
 
 /** Settings as the session holds them. */
 interface PageSettings extends EngineSettings {
@@ -544,11 +571,15 @@ interface Step {
   what: string[];
 }
 
-/** `sphering`: a matrix that took the place of an unmixing matrix, and may be its sphering matrix. */
+/**
+ * `sphering`: a matrix that took the place of an unmixing matrix, and may be its sphering matrix; `former`: what gave way to
+ * another table and may be kept beside it.
+ */
 interface Said {
   replaced: string[];
   dropped: string[];
   sphering?: Input;
+  former?: Decomposition;
 }
 
 type Phase = "loading" | "ready" | "busy" | "answered" | "failed";
@@ -587,13 +618,13 @@ interface SessionState {
   /** Files that gave way with the last change, and settings that went with them. */
   said: Said | null;
   /** Files that came in and led to no answer, while those of the answer stay. */
-  refused: { inputs: Inputs; settings: PageSettings } | null;
+  refused: { inputs: Inputs; settings: PageSettings; id?: number } | null;
   heads: CatalogueHead[];
   offers: ChoiceOffer[];
   /** The invented map that was put in. */
   example: ExampleTitle | null;
   /** What the invented map has replaced. */
-  setAside: { inputs: Inputs; settings: PageSettings } | null;
+  setAside: { inputs: Inputs; settings: PageSettings; decompositions: Decomposition[]; current: number } | null;
   /** All there are, the current one among them; there is always one. */
   decompositions: Decomposition[];
   /** The current one's id. */
@@ -604,7 +635,7 @@ interface SessionState {
   failure: Fault | null;
   /** Label of the electrode that is pointed at, wherever on the page. */
   pointed: string | null;
-  progress: { done: number; total: number } | null;
+  progress: Progress | null;
   /** Maps still to be fitted were given up. */
   stopped: boolean;
 }

@@ -1,5 +1,5 @@
 /**
- * The worker: one engine, the studies the page has named, and long runs cut into slices so that other
+ * A worker of the page: one engine, the studies the page has named, and long runs cut into slices so that other
  * messages are answered in between. Its first message is the compiled module.
  */
 
@@ -18,23 +18,36 @@ const workerEngine = makeEngine(() => {
   return workerModule;
 });
 
-/** Requests by the page's keys; a study is opened when first asked about. @type {Map<number, EngineRequest>} */
+/** Requests by the page's keys; a study is opened when first asked about. @type {Map<number, NamedRequest>} */
 const namedRequests = new Map();
 
 /** Of a study under other settings, the key of the one whose tables it has. @type {Map<number, number>} */
-const bases = new Map();
+const studyBases = new Map();
 
 /** @type {Map<number, Study>} */
 const studies = new Map();
 
-/** @param {number} key @param {EngineRequest | ChangedRequest} request */
+/** Tasks that are not answered yet: long ones give way to the others. */
+let tasksAtHand = 0;
+
+/** @param {number} key @param {NamedRequest | ChangedRequest} request */
 function nameRequest(key, request) {
   if (!("from" in request)) return namedRequests.set(key, request);
-  const { from, settings } = request;
+  const { from, settings, lenient } = request;
   const before = namedRequests.get(from);
   if (before === undefined) throw new TypeError(`study ${from} has no request`);
-  bases.set(key, from);
-  return namedRequests.set(key, { ...before, settings });
+  studyBases.set(key, from);
+  return namedRequests.set(key, { ...before, settings, lenient });
+}
+
+/** A study without the wishes for electrodes that its tables do not have. @param {Study} study @param {EngineSettings} settings */
+function withoutForeign(study, settings) {
+  const notes = study.notes.filter(({ code }) => code === "exclude-unmatched");
+  const foreign = notes.flatMap(({ values }) => /** @type {any} */ (values)?.labels ?? []);
+  if (foreign.length === 0) return study;
+  const own = study.with({ ...settings, exclude: settings.exclude?.filter((label) => !foreign.includes(label)) });
+  study.close();
+  return own;
 }
 
 /** @param {number} key */
@@ -43,9 +56,11 @@ function studyOf(key) {
   if (known !== undefined) return known;
   const request = namedRequests.get(key);
   if (request === undefined) throw new TypeError(`study ${key} has no request`);
-  const base = bases.get(key);
+  const { lenient, ...plain } = request;
+  const base = studyBases.get(key);
   const before = base === undefined ? undefined : studies.get(base);
-  const study = before?.with(request.settings ?? {}) ?? workerEngine.open(request);
+  const opened = before?.with(plain.settings ?? {}) ?? workerEngine.open(plain);
+  const study = lenient ? withoutForeign(opened, plain.settings ?? {}) : opened;
   studies.set(key, study);
   return study;
 }
@@ -73,27 +88,38 @@ function summaryOf(map) {
 }
 
 /**
- * Fits every map in turn and hands each to `take`. Slices are as short as can be until one map is fitted, so
- * that an answer can be shown at once.
- * @param {number} id
+ * Works through maps in slices, and lets other messages in between. The first slice is as short as can be, so that an
+ * answer can be shown at once.
  * @param {number} key
  * @param {Study} study
- * @param {(map: ReportMap) => void} take
+ * @param {{ first: number, last: number }} range
+ * @param {(done: number, milliseconds: number) => number} slice does some from one map on and tells how many
  */
-async function eachMap(id, key, study, take) {
-  const total = study.count;
-  let found = false;
-  let done = 0;
-  while (done < total) {
+async function inSlices(key, study, { first, last }, slice) {
+  for (let done = first; done < last;) {
     if (studies.get(key) !== study) throw new DOMException("the study was closed meanwhile", "AbortError");
-    const fitted = study.fitWithin(done, found ? SLICE_MS : 0);
-    done += fitted.length;
-    fitted.forEach(take);
-    const maps = fitted.map(summaryOf);
-    found ||= maps.some((map) => "rv" in map);
-    self.postMessage({ id, progress: { done, total, maps } });
+    done += slice(done, done === 0 ? 0 : SLICE_MS);
     await breathe();
   }
+}
+
+/** How long a worker that has nothing to do is kept warm. */
+const WARMING_MS = 150;
+
+/** Fits an example over and over for a moment, unless there is something to do. @param {EngineRequest} request */
+async function warmUpOn(request) {
+  const study = workerEngine.open(request);
+  const end = performance.now() + WARMING_MS;
+  while (performance.now() < end && tasksAtHand === 1) {
+    study.fitWithin(0, SLICE_MS / 4);
+    await breathe();
+  }
+  study.close();
+}
+
+/** @param {Study} study @returns {OpenedStudy} */
+function openedStudy(study) {
+  return { preamble: study.preamble(), count: study.count };
 }
 
 /** @param {Sheet} sheet the rasters are handed over, not copied */
@@ -105,7 +131,7 @@ function rastersOf(sheet) {
 /** @param {WorkerMessage} message */
 async function answerTask(message) {
   const { id } = message;
-  if ("request" in message && message.request !== undefined) nameRequest(message.key, message.request);
+  for (const [key, request] of Object.entries(message.named ?? {})) nameRequest(Number(key), request);
   switch (message.kind) {
     case "program":
       return self.postMessage({ id, value: workerEngine.program() });
@@ -115,13 +141,23 @@ async function answerTask(message) {
       return self.postMessage({ id, value: workerEngine.choices() });
     case "roleOf":
       return self.postMessage({ id, value: workerEngine.roleOf(message.name, message.content) });
-    case "open": {
-      const study = studyOf(message.key);
-      return self.postMessage({ id, value: { preamble: study.preamble(), count: study.count } });
-    }
-    case "fitAll":
-      await eachMap(id, message.key, studyOf(message.key), () => {});
+    case "warm":
+      await warmUpOn(message.request);
       return self.postMessage({ id, value: null });
+    case "open":
+      return self.postMessage({ id, value: openedStudy(studyOf(message.key)) });
+    case "fit": {
+      const study = studyOf(message.key);
+      if (message.opening) self.postMessage({ id, progress: { study: openedStudy(study) } });
+      const { first, last } = message;
+      const end = Math.min(last ?? study.count, study.count);
+      await inSlices(message.key, study, { first, last: end }, (done, milliseconds) => {
+        const maps = study.fitWithin(done, milliseconds).slice(0, end - done).map(summaryOf);
+        self.postMessage({ id, progress: { first: done, maps } });
+        return maps.length;
+      });
+      return self.postMessage({ id, value: null });
+    }
     case "sheet": {
       const sheet = studyOf(message.key).sheet(message.index);
       return self.postMessage({ id, value: sheet }, { transfer: rastersOf(sheet) });
@@ -130,7 +166,13 @@ async function answerTask(message) {
       const study = studyOf(message.key);
       const preamble = study.preamble();
       const parts = [reportHead(preamble)];
-      await eachMap(id, message.key, study, (map) => parts.push(reportMap(map, parts.length === 1)));
+      const total = study.count;
+      await inSlices(message.key, study, { first: 0, last: total }, (first, milliseconds) => {
+        const maps = study.fitWithin(first, milliseconds);
+        for (const map of maps) parts.push(reportMap(map, parts.length === 1));
+        self.postMessage({ id, progress: { done: first + maps.length, total } });
+        return maps.length;
+      });
       parts.push(reportTail(preamble));
       return self.postMessage({ id, value: new Blob(parts, { type: "application/json" }) });
     }
@@ -138,7 +180,7 @@ async function answerTask(message) {
       studies.get(message.key)?.close();
       studies.delete(message.key);
       namedRequests.delete(message.key);
-      bases.delete(message.key);
+      studyBases.delete(message.key);
       return self.postMessage({ id, value: null });
   }
 }
@@ -148,5 +190,8 @@ self.addEventListener("message", (/** @type {MessageEvent} */ event) => {
     workerModule = event.data.module;
     return;
   }
-  answerTask(event.data).catch((error) => self.postMessage({ id: event.data.id, fault: faultOf(error) }));
+  tasksAtHand++;
+  answerTask(event.data)
+    .catch((error) => self.postMessage({ id: event.data.id, fault: faultOf(error) }))
+    .finally(() => tasksAtHand--);
 });

@@ -7,10 +7,10 @@ export const NO_INPUTS = { electrodes: null, maps: null, others: [] };
 const FITTING = { maps: ["maps", "electrodes-and-maps"], electrodes: ["electrodes", "labels"] };
 
 /** What says something about one table alone. @type {Record<InputKind, FileRole[]>} */
-const BELONGING = { maps: ["sphering", "times"], electrodes: ["labels", "coordinates", "channels"] };
+export const BELONGING = { maps: ["sphering", "times"], electrodes: ["labels", "coordinates", "channels"] };
 
 /** Names for what was pasted or typed. @type {Record<InputKind, string>} */
-const PASTED = { maps: "pasted maps", electrodes: "pasted electrodes" };
+export const PASTED = { maps: "pasted maps", electrodes: "pasted electrodes" };
 
 /** @param {Inputs} inputs */
 export function isEmpty({ maps, electrodes, others }) {

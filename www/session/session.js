@@ -3,16 +3,19 @@
  * and watch it.
  */
 
+import { makeFitting } from "./fitting.js";
+import { makeInquiries } from "./inquiries.js";
+import { makeSideBySide } from "./side_by_side.js";
 import { makeStore } from "./store.js";
 import { faultOf } from "../engine/fault.js";
 import { pageFault } from "../text/faults.js";
-import { heldBytes, isEmpty, namedFiles, NO_INPUTS, placedInputs, toldRoles } from "./inputs.js";
-import { emptyDecomposition, mirrored } from "./decompositions.js";
+import { emptyDecomposition, groupedInputs, mirrored, newDecompositions, nextId, SHARED } from "./decompositions.js";
+import { heldBytes, isEmpty, namedFiles, NO_INPUTS, placedInputs } from "./inputs.js";
 import { isMisfit, isUnreadable } from "./help.js";
-import { differingSettings, firstLine, FIRST_SETTINGS, isOtherTable, sentSettings, settingsForOther } from "./settings.js";
+import { differingSettings, firstLine, FIRST_SETTINGS, isOtherTable, settingsForOther } from "./settings.js";
 import { settingsOfFiles, settingsWith, withTurned, withValueAt } from "./settings.js";
 
-/** @import { EngineClient } from "../engine/pool/client.js" */
+/** @import { Pool } from "../engine/pool/pool.js" */
 
 /** @typedef {ReturnType<typeof makeSession>} Session */
 
@@ -60,27 +63,18 @@ export function makeSession() {
     write(patch) {
       const state = { ...held.read(), ...patch };
       const decompositions = mirrored(state);
-      const same = decompositions.every((one, at) => one === state.decompositions[at]);
-      held.write(same ? patch : { ...patch, decompositions });
+      held.write(decompositions === state.decompositions ? patch : { ...patch, decompositions });
     },
   };
 
-  /** @type {EngineClient | null} */
+  /** @type {Pool | null} */
   let client = null;
-  /** @type {(client: EngineClient) => void} */
+  /** @type {(client: Pool) => void} */
   let announce = () => {};
-  /** @type {Promise<EngineClient>} */
+  /** @type {Promise<Pool>} */
   const started = new Promise((resolve) => {
     announce = resolve;
   });
-  /** The study being opened, until it is answered or has failed. @type {number | null} */
-  let pending = null;
-
-  function restingPhase() {
-    if (client === null) return "loading";
-    return store.read().answer === null ? "ready" : "answered";
-  }
-
   /** @param {unknown} error an error, or a fault as it came from the worker */
   function fail(error) {
     const fault = /** @type {Fault} */ (
@@ -91,17 +85,11 @@ export function makeSession() {
     if (fault.code !== "given-up") store.write({ phase: "failed", failure: pageFault(fault) });
   }
 
-  /** @param {boolean} [atOnce] ends the worker, which may be long at it, and with it what it has read */
-  function dropPending(atOnce = true) {
-    if (pending === null || client === null) return;
-    if (atOnce) client.giveUp(pending);
-    client.forget(pending);
-    pending = null;
-  }
+  const fitting = makeFitting(store, () => client, fail);
 
   /** @param {SessionState} state @param {string[]} what @returns {Step} */
   function stepOf({ decompositions, current, setAside }, what) {
-    return { decompositions: decompositions.map((one) => ({ ...one, answer: null })), current, setAside, what };
+    return { decompositions, current, setAside, what };
   }
 
   /**
@@ -111,17 +99,38 @@ export function makeSession() {
    */
   function step(patch, what) {
     const state = store.read();
-    const steps = [...state.past.slice(1 - MOST_STEPS), stepOf(state, what)];
+    const kept = patch.decompositions ?? state.decompositions;
+    // Answers of those that stay go on; those of the others are there again when it is undone.
+    const before = state.decompositions.map((one) => (kept.some(({ id }) => id === one.id) ? { ...one, answer: null } : one));
+    const steps = [...state.past.slice(1 - MOST_STEPS), stepOf({ ...state, decompositions: before }, what)];
     const held = () => heldBytes(steps.flatMap(({ decompositions }) => decompositions.map(({ inputs }) => inputs)));
     while (steps.length > 1 && held() > MOST_PAST_BYTES) steps.shift();
     store.write({ past: steps, said: null, refused: null, changed: [], ...patch });
   }
 
+  /** Decompositions as they were, with the answers that there are for them. @param {Decomposition[]} wanted */
+  function restored(wanted) {
+    const live = store.read().decompositions;
+    return wanted.map((one) => {
+      const now = live.find(({ id }) => id === one.id);
+      return now === undefined ? fitting.revived(one) : { ...one, answer: now.answer, failure: now.failure };
+    });
+  }
+
+  /** Decompositions as they were, and the current one of them in the state. @param {Pick<Step, "decompositions" | "current">} before */
+  function backTo({ decompositions: wanted, current }) {
+    const decompositions = restored(wanted);
+    const { inputs, settings, example, answer, failure } = decompositions.find(({ id }) => id === current) ?? decompositions[0];
+    const shown = store.read().current === current ? store.read().answer : answer;
+    return { decompositions, current, inputs, settings, example, answer: shown, failure };
+  }
+
   /** Inputs that came as a whole and led to no answer give way to those of the answer. @param {SessionState} before */
-  function refuse({ inputs, settings, example, setAside, past, said }) {
-    const { inputs: refusedInputs, settings: refusedSettings } = store.read();
-    const refused = { inputs: refusedInputs, settings: refusedSettings };
-    store.write({ inputs, settings, example, setAside, past, said, refused });
+  function refuse(before) {
+    const { inputs, settings } = store.read();
+    const { setAside, past, said } = before;
+    store.write({ ...backTo(before), setAside, past, said, refused: { inputs, settings } });
+    fitting.startOthers();
   }
 
   /**
@@ -130,10 +139,15 @@ export function makeSession() {
    * @param {Input[]} [replaced]
    */
   function exchange(inputs, replaced = []) {
-    const { inputs: held, settings, example } = store.read();
+    const { inputs: held, settings, example, decompositions, current } = store.read();
     const other = KINDS.filter((kind) => held[kind] !== inputs[kind] && isOtherTable(held[kind], inputs[kind]));
     const names = namedFiles(inputs).map(({ name }) => name);
-    const kept = settingsOfFiles(settingsForOther(settings, example === null ? other : KINDS), names);
+    const own = settingsOfFiles(settingsForOther(settings, example === null ? other : KINDS), names);
+    // What goes for all stays while there are others.
+    const shared = Object.fromEntries(SHARED.filter((key) => settings[key] !== undefined).map((key) => [key, settings[key]]));
+    const kept = decompositions.length > 1 ? { ...own, ...shared } : own;
+    const former = decompositions.find(({ id }) => id === current);
+    const replacing = example === null && held.maps !== null && replaced.includes(held.maps);
     const dropped = differingSettings(settings, kept);
     step(
       {
@@ -141,7 +155,11 @@ export function makeSession() {
         settings: example === null ? kept : { ...kept, mapUnit: FIRST_SETTINGS.mapUnit },
         example: null,
         setAside: null,
-        said: { replaced: example === null ? replaced.map(({ name }) => name) : [], dropped },
+        said: {
+          replaced: example === null ? replaced.map(({ name }) => name) : [],
+          dropped,
+          former: replacing ? former : undefined,
+        },
       },
       ["input"],
     );
@@ -160,6 +178,8 @@ export function makeSession() {
    */
   async function takeIn(given, alone = true) {
     const before = store.read();
+    const groups = groupedInputs(given, before.example === null ? before.inputs : NO_INPUTS);
+    if (groups.length > 1) return takeSeveral(groups, false);
     const { inputs, replaced } = placedInputs(before.example === null ? before.inputs : NO_INPUTS, given);
     exchange(inputs, replaced);
     const { said } = store.read();
@@ -174,6 +194,53 @@ export function makeSession() {
     const waiting = refusedFiles(before).map(({ input }) => input);
     const others = waiting.filter(({ role }) => given.every((input) => input.role !== role));
     if (others.length > 0) await takeIn([...others, ...given], false);
+  }
+
+  /**
+   * Several tables of maps come in, each a decomposition of its own, in the place of the current one or beside it.
+   * @param {Inputs[]} groups
+   * @param {boolean} beside
+   */
+  async function takeSeveral(groups, beside) {
+    const { decompositions, current, example, inputs } = store.read();
+    const at = decompositions.findIndex(({ id }) => id === current);
+    const former = decompositions[at];
+    const stays = beside && inputs.maps !== null;
+    const rest = decompositions.filter((one) => stays || one !== former);
+    // Settings of tables that give way go with them, as for a single one.
+    const plain = { ...former, settings: { ...settingsForOther(former.settings, KINDS), files: undefined } };
+    const made = newDecompositions(groups, stays || rest.length > 0 ? former : plain, rest);
+    const gone = !stays && example === null && inputs.maps !== null;
+    const [first] = made;
+    const next = [...rest.slice(0, stays ? at + 1 : at), ...made, ...rest.slice(stays ? at + 1 : at)];
+    step(
+      {
+        decompositions: next,
+        current: first.id,
+        inputs: first.inputs,
+        settings: first.settings,
+        example: null,
+        answer: null,
+        failure: null,
+        setAside: null,
+        said: { replaced: gone ? namedFiles(inputs).map(({ name }) => name) : [], dropped: [], former: gone ? former : undefined },
+      },
+      ["input"],
+    );
+    await ask();
+    await passOver(first.id, made.map(({ id }) => id));
+  }
+
+  /** Of tables that came together, one that leads to no answer is told of, and another is shown. @param {number} id @param {number[]} ids */
+  async function passOver(id, ids) {
+    const isStill = () => store.read().current === id && store.read().answer === null && store.read().failure !== null;
+    if (!isStill()) return;
+    await fitting.rest();
+    const { decompositions, failure, inputs, settings } = store.read();
+    const answered = decompositions.find((one) => ids.includes(one.id) && one.answer !== null);
+    if (!isStill() || answered === undefined) return;
+    await sideBySide.openDecomposition(answered.id);
+    store.write({ phase: "failed", failure, refused: { inputs, settings, id } });
   }
 
   /**
@@ -212,119 +279,52 @@ export function makeSession() {
     store.write({ inputs: now, said: { replaced: replaced.map((input) => input.name), dropped: [] } });
   }
 
-  /** Asks the engine about the present inputs; an older question nobody waits for any more is given up. */
+  /** Asks the engine about what is there now, the current decomposition first. */
   /** @param {SessionState} [earlier] what to go back to if inputs that came as a whole lead to no answer */
   async function ask(earlier) {
-    if (client === null) return;
-    const { inputs, settings, example, answer: before } = store.read();
+    const { current, answer: before } = store.read();
     const back = earlier !== undefined && (before === null || earlier.inputs === before.inputs) ? earlier : null;
-    // The worker has read these tables for the present answer: it needs no more than the other settings.
-    const from = before?.inputs === inputs ? before.key : null;
-    dropPending(from === null);
-    if (inputs.maps === null) {
-      if (before !== null) client.forget(before.key);
-      store.write({ phase: "ready", answer: null, failure: null, progress: null, stopped: false });
-      return;
-    }
-    /** @type {EngineRequest} */
-    const request = {
-      files: namedFiles(inputs).map(({ name, input }) => ({ name, content: input.content })),
-      settings: sentSettings(settings, toldRoles(inputs)),
-    };
-    const key = client.name(request, from);
-    pending = key;
-    store.write({ phase: "busy", failure: null, progress: null, stopped: false });
-    try {
-      const { preamble, count } = await client.ask({ kind: "open", key });
-      if (pending !== key) return;
-      const beside = inputs.maps.role === "electrodes-and-maps" ? inputs.maps.name : null;
-      const names = { electrodes: inputs.electrodes?.name ?? beside, maps: inputs.maps.name };
-      /** @type {Answer} */
-      const draft = { key, names, inputs, example, settings, preamble, count, maps: [], fitted: 0, chosen: 0, sheet: null };
-      // The same tables under other settings: the same map stays in view and is answered before the others.
-      if (before !== null && before.count === count && before.names.maps === names.maps) {
-        draft.maps = [...before.maps];
-        draft.chosen = before.chosen;
-        // A map that cannot be fitted under these settings is found out below.
-        const sheet = await client.ask({ kind: "sheet", key, index: draft.chosen }).catch(() => null);
-        if (sheet !== null) present(draft, sheet);
-      }
-      await fitMaps(draft);
-    } catch (fault) {
-      if (pending === key) {
-        pending = null;
-        client.forget(key);
-        const { code } = /** @type {Fault} */ (fault);
-        // Without an answer only what cannot be read at all goes again; tables stay, to be mended.
-        if (back !== null && code !== "given-up" && (before !== null || isUnreadable(code))) refuse(back);
-        fail(fault);
-      } else if (store.read().answer?.key === key) {
-        fail(fault);
-      }
-    }
-  }
-
-  /** Fits every map. @param {Answer} draft becomes the answer as soon as one of its maps is fitted, if it is not yet */
-  async function fitMaps(draft) {
-    if (client === null || (pending !== draft.key && store.read().answer?.key !== draft.key)) return;
-    const { key, maps } = draft;
-    /** @type {Promise<void> | null} */
-    let shown = null;
-    await client.ask({ kind: "fitAll", key }, (step) => {
-      const from = step.done - step.maps.length;
-      step.maps.forEach((map, at) => {
-        maps[from + at] = map;
-      });
-      draft.fitted = step.done;
-      const progress = step.done < step.total ? { done: step.done, total: step.total } : null;
-      const answer = store.read().answer;
-      if (answer?.key === key) return store.write({ answer: { ...answer, fitted: step.done }, progress });
-      if (pending !== key) return;
-      store.write({ progress });
-      const kept = draft.chosen < step.done ? maps[draft.chosen] : undefined;
-      const first = maps.slice(0, step.done).findIndex((map) => "rv" in map);
-      const fitted = kept !== undefined && "rv" in kept ? draft.chosen : first;
-      if (shown !== null || kept === undefined || fitted < 0) return;
-      shown = show({ ...draft, chosen: fitted });
-      // Given up together with the fits, nobody asks for it below.
-      shown.catch(() => {});
+    const current_first = fitting.start(current, (code) => {
+      // Without an answer only what cannot be read at all goes again; tables stay, to be mended.
+      if (back !== null && (before !== null || isUnreadable(code))) refuse(back);
     });
-    if (shown !== null) return shown;
-    const first = maps[0];
-    if (pending === key && first !== undefined && "error" in first) throw first.error;
+    fitting.startOthers();
+    await current_first;
   }
 
-  /** @param {Answer} draft */
-  async function show(draft) {
-    if (client === null || pending !== draft.key) return;
-    present(draft, await client.ask({ kind: "sheet", key: draft.key, index: draft.chosen }));
+  /** Asks about what has changed. */
+  async function askChanged() {
+    const { current, answer, inputs } = store.read();
+    const asked = fitting.isAsked(current) && (answer !== null || inputs.maps === null || fitting.isPending());
+    if (!asked) return ask();
+    const { failure } = store.read();
+    store.write({ phase: failure !== null ? "failed" : fitting.isPending() ? "busy" : fitting.restingPhase() });
+    fitting.startOthers();
+    if (answer !== null && answer.sheet === null) await inquiries.choose(answer.chosen);
   }
 
-  /** @param {Answer} draft becomes the answer, unless nobody waits for it any more @param {Sheet} sheet */
-  function present(draft, sheet) {
-    if (pending !== draft.key) return;
-    pending = null;
-    const before = store.read().answer;
-    if (before !== null) client?.forget(before.key);
-    store.write({ phase: "answered", answer: { ...draft, sheet } });
-  }
+  const inquiries = makeInquiries(store, () => client, fail, fitting);
+  const sideBySide = makeSideBySide(store, () => client, { fitting, step, askChanged, choose: inquiries.choose });
 
   return {
+    ...inquiries,
+    ...sideBySide,
     read: store.read,
     watch: store.watch,
     fail,
 
     /**
      * The engine has answered its first calls.
-     * @param {EngineClient} ready
+     * @param {Pool} ready
      * @param {Program} program
      * @param {CatalogueHead[]} heads
      * @param {ChoiceOffer[]} offers
+     * @param {TableColumn[]} columns
      */
-    engineReady(ready, program, heads, offers) {
+    engineReady(ready, program, heads, offers, columns) {
       client = ready;
       announce(ready);
-      store.write({ phase: store.read().phase === "failed" ? "failed" : "ready", program, heads, offers });
+      store.write({ phase: store.read().phase === "failed" ? "failed" : "ready", program, heads, offers, columns });
       if (store.read().inputs.maps !== null) ask();
     },
 
@@ -348,18 +348,40 @@ export function makeSession() {
      * @param {(Input | Promise<Input>)[]} given
      */
     async add(given) {
+      await this.bring(given, takeIn);
+    },
+
+    /** Files beside what is there, each table of maps a decomposition of its own. @param {(Input | Promise<Input>)[]} given */
+    async addDecompositions(given) {
+      await this.bring(given, (inputs) => {
+        const tables = inputs.filter(({ role }) => role === "maps" || role === "electrodes-and-maps");
+        const { inputs: held } = store.read();
+        if (tables.length === 0 || held.maps === null) return takeIn(inputs);
+        const groups = groupedInputs(inputs, held, 1);
+        return takeSeveral(groups.length > 0 ? groups : [placedInputs({ ...held, maps: null }, inputs).inputs], true);
+      });
+    },
+
+    /**
+     * @param {(Input | Promise<Input>)[]} given
+     * @param {(inputs: Input[]) => Promise<void>} take
+     */
+    async bring(given, take) {
       const taken = await Promise.allSettled(given.map(async (input) => this.recognised(await input)));
       const inputs = taken.flatMap((one) => (one.status === "fulfilled" ? [one.value] : []));
       const readable = inputs.filter(({ role }) => role !== undefined);
       const spoilt = inputs.filter(({ role }) => role === undefined);
-      if (inputs.length > 0) await takeIn(readable.length > 0 ? readable : spoilt);
+      if (inputs.length > 0) await take(readable.length > 0 ? readable : spoilt);
       if (store.read().failure !== null) return;
-      const refused = taken.find((one) => one.status === "rejected");
-      const fault = refused === undefined ? spoilt[0]?.fault : refused.reason;
-      if (fault === undefined) return;
+      const faults = [
+        ...taken.flatMap((one) => (one.status === "rejected" ? [faultOf(one.reason)] : [])),
+        ...(readable.length > 0 ? spoilt : spoilt.slice(1)).flatMap(({ fault }) => fault ?? []),
+      ].map(pageFault);
+      if (faults.length === 0) return;
       const { inputs: kept, settings } = store.read();
       store.write({ refused: { inputs: kept, settings } });
-      fail(fault);
+      const [first, ...others] = faults;
+      fail({ ...first, message: [first, ...others].map(({ message }) => message).join(" ") });
     },
 
     /** Puts a sphering matrix beside an unmixing matrix. @param {Input} input */
@@ -416,13 +438,17 @@ export function makeSession() {
 
     /** Shows an invented map; what was put in before can be taken back. @param {Example} example */
     show(example) {
-      const { inputs, settings, example: before, setAside } = store.read();
+      const { inputs, settings, example: before, setAside, decompositions, current } = store.read();
+      // It takes the place of all that is there.
+      const id = nextId(decompositions);
+      const alone = decompositions.length > 1 ? { decompositions: [emptyDecomposition(id)], current: id, answer: null } : {};
       step(
         {
           inputs: { ...NO_INPUTS, electrodes: example.electrodes, maps: example.maps },
           settings: { ...settingsForOther(settings, KINDS), files: undefined, mapUnit: example.unit ?? FIRST_SETTINGS.mapUnit },
           example: { name: example.name, title: example.title, edited: false },
-          setAside: before === null && !isEmpty(inputs) ? { inputs, settings } : setAside,
+          setAside: before === null && !isEmpty(inputs) ? { inputs, settings, decompositions, current } : setAside,
+          ...alone,
         },
         ["input"],
       );
@@ -433,8 +459,10 @@ export function makeSession() {
     takeBack() {
       const { setAside } = store.read();
       if (setAside === null) return;
-      step({ ...setAside, example: null, setAside: null }, ["input"]);
-      ask();
+      const { inputs, settings, ...all } = setAside;
+      const back = all.decompositions.length > 1 ? backTo(all) : { inputs, settings };
+      step({ ...back, example: null, setAside: null }, ["input"]);
+      askChanged();
     },
 
     /** @param {Partial<PageSettings>} settings */
@@ -462,6 +490,7 @@ export function makeSession() {
       const before = store.read();
       const { refused } = before;
       if (refused === null) return this.setAt(path, value);
+      if (refused.id !== undefined) return sideBySide.openDecomposition(refused.id).then(() => this.setAt(path, value));
       if (isRole(path)) return addAs(path, /** @type {FileRole} */ (value), refused);
       const settings = settingsWith(refused.settings, path, value);
       step({ inputs: refused.inputs, settings, example: null, setAside: null, changed: [path[0]] }, [path[0]]);
@@ -473,13 +502,9 @@ export function makeSession() {
       const { past } = store.read();
       const last = past.at(-1);
       if (last === undefined) return;
-      const { decompositions, current, setAside } = last;
-      const live = store.read().decompositions;
-      const restored = decompositions.map((one) => ({ ...one, answer: live.find(({ id }) => id === one.id)?.answer ?? null }));
-      const { inputs, settings, example } = restored.find(({ id }) => id === current) ?? restored[0];
-      const back = { decompositions: restored, current, inputs, settings, example, setAside };
-      store.write({ ...back, past: past.slice(0, -1), changed: [], said: null, refused: null });
-      ask();
+      const { setAside } = last;
+      store.write({ ...backTo(last), failure: null, setAside, past: past.slice(0, -1), changed: [], said: null, refused: null });
+      askChanged();
     },
 
     /** Turns the sign of the map that is shown, or turns it back. */
@@ -514,52 +539,21 @@ export function makeSession() {
       if (store.read().pointed !== label) store.write({ pointed: label });
     },
 
-    /** Shows another map of the table. @param {number} index */
-    async choose(index) {
-      const { answer } = store.read();
-      const map = answer?.maps[index];
-      if (client === null || answer === null || map === undefined) return;
-      if ("error" in map) {
-        store.write({ answer: { ...answer, chosen: index, sheet: null } });
-        return;
-      }
-      store.write({ answer: { ...answer, chosen: index } });
-      try {
-        const sheet = await client.ask({ kind: "sheet", key: answer.key, index });
-        const now = store.read().answer;
-        if (now?.key === answer.key && now.chosen === index) store.write({ answer: { ...now, sheet } });
-      } catch (fault) {
-        if (store.read().answer?.key === answer.key) fail(fault);
-      }
-    },
-
-    /** The whole report of the present answer. @returns {Promise<Blob | null>} */
-    async report() {
-      const { answer } = store.read();
-      if (client === null || answer === null) return null;
-      try {
-        return await client.ask({ kind: "report", key: answer.key }, ({ done, total }) => {
-          store.write({ progress: { done, total } });
-        });
-      } catch (fault) {
-        fail(fault);
-        return null;
-      } finally {
-        store.write({ progress: null });
-      }
-    },
-
     /** Gives up what the engine is at. */
     cancel() {
-      const { answer } = store.read();
-      if (pending !== null) dropPending();
-      else if (answer !== null) client?.giveUp(answer.key);
-      store.write({ phase: restingPhase(), progress: null, stopped: true });
+      fitting.cancel();
+      store.write({ phase: fitting.restingPhase(), progress: null, stopped: true });
+    },
+
+    /** Goes on with what was given up. */
+    fitRest() {
+      store.write({ stopped: false });
+      fitting.fitRest();
     },
 
     /** Puts the failure away; the previous answer stays. */
     dismiss() {
-      store.write({ phase: restingPhase(), failure: null, refused: null });
+      store.write({ phase: fitting.restingPhase(), failure: null, refused: null });
     },
   };
 }

@@ -47,7 +47,7 @@ export function isOtherTable(before, now) {
 }
 
 /** Settings that belong to one table and say nothing about another. @type {Record<InputKind, (keyof PageSettings)[]>} */
-const BOUND = {
+export const BOUND = {
   maps: [
     "exclude",
     "interpolated",

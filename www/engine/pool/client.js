@@ -6,10 +6,10 @@
  * and nothing is waited for.
  *
  * @typedef {{ task: WorkerTask, resolve: (value: any) => void, reject: (fault: Fault) => void,
- *             progress: ((step: FitProgress) => void) | undefined }} Waiting
+ *             progress: ((step: any) => void) | undefined }} Waiting
  */
 
-/** @typedef {ReturnType<typeof makeClient>} EngineClient */
+/** @typedef {ReturnType<typeof makeClient>} WorkerClient */
 
 /** @param {string} code @param {string} [details] @returns {Fault} */
 function clientFault(code, details) {
@@ -17,31 +17,44 @@ function clientFault(code, details) {
 }
 
 /** Bytes from which on a file is large. */
-const LARGE_BYTES = 16 * 2 ** 20;
+export const LARGE_BYTES = 16 * 2 ** 20;
 
 /** Whether a content, or something in a request, is that large. @param {unknown} given @returns {boolean} */
-function isLarge(given) {
+export function isLarge(given) {
   if (typeof given === "string" || given instanceof Uint8Array) return given.length > LARGE_BYTES;
   return typeof given === "object" && given !== null && Object.values(given).some(isLarge);
+}
+
+/** What the page has named, for all workers: requests by their keys, and of one with another's tables the other's key. */
+export function makeBook() {
+  return {
+    next: 1,
+    /** @type {Map<number, NamedRequest>} */
+    requests: new Map(),
+    /** @type {Map<number, number>} */
+    bases: new Map(),
+  };
+}
+
+/** The studies that a task needs. @param {WorkerTask} task @returns {number[]} */
+export function keysOf(task) {
+  return "key" in task && task.kind !== "close" ? [task.key] : [];
 }
 
 /**
  * @param {WebAssembly.Module} module
  * @param {() => Worker} startWorker
+ * @param {ReturnType<typeof makeBook>} [book] shared by all workers
  */
-export function makeClient(module, startWorker) {
+export function makeClient(module, startWorker, book = makeBook()) {
   /** @type {Worker | null} */
   let worker = null;
   /** Whether the browser lets workers run at all. */
   let answered = false;
   let nextId = 1;
-  let nextKey = 1;
   /** @type {Map<number, Waiting>} */
   const waiting = new Map();
-  /** @type {Map<number, EngineRequest>} */
-  const requests = new Map();
-  /** Of a request with the tables of another and other settings, the other's key. @type {Map<number, number>} */
-  const bases = new Map();
+  const { requests, bases } = book;
   /** Keys whose request the present worker holds. @type {Set<number>} */
   const told = new Set();
   /** Whether the present worker held a large file that was given up. */
@@ -98,22 +111,28 @@ export function makeClient(module, startWorker) {
   /**
    * Tables that the worker holds are not sent again.
    * @param {number} key
-   * @returns {EngineRequest | ChangedRequest | undefined}
+   * @returns {NamedRequest | ChangedRequest | undefined}
    */
   function requestOf(key) {
     const request = requests.get(key);
     const from = bases.get(key);
     if (request === undefined || from === undefined || !told.has(from)) return request;
-    return { from, settings: request.settings ?? {} };
+    const { settings = {}, lenient } = request;
+    return { from, settings, lenient };
   }
 
   /** @param {number} id @param {WorkerTask} task */
   function post(id, task) {
     try {
       const present = ensureWorker();
-      const request = "key" in task && !told.has(task.key) ? requestOf(task.key) : undefined;
-      if ("key" in task) told.add(task.key);
-      present.postMessage(request === undefined ? { ...task, id } : { ...task, id, request });
+      /** @type {Record<number, NamedRequest | ChangedRequest>} */
+      const named = {};
+      for (const key of keysOf(task)) {
+        const request = told.has(key) ? undefined : requestOf(key);
+        if (request !== undefined) named[key] = request;
+        told.add(key);
+      }
+      present.postMessage({ ...task, id, named });
     } catch (error) {
       lose(String(error));
     }
@@ -127,7 +146,7 @@ export function makeClient(module, startWorker) {
 
   /**
    * @param {WorkerTask} task
-   * @param {(step: FitProgress) => void} [progress]
+   * @param {(step: any) => void} [progress]
    * @returns {Promise<any>}
    */
   function ask(task, progress) {
@@ -167,35 +186,53 @@ export function makeClient(module, startWorker) {
     });
   }
 
+  /** Closes a study, which is opened again when it is asked about. @param {number} key */
+  function release(key) {
+    if (worker === null || !told.delete(key)) return;
+    // Another study may hold the same tables, with other settings.
+    worn ||= isLarge(requests.get(key)) && ![...told].some((other) => isLarge(requests.get(other)));
+    if (worn && waiting.size === 0) stop();
+    else ask({ kind: "close", key }).catch(() => {});
+  }
+
   return {
     ask,
 
+    /** Whether nothing is waited for. */
+    isIdle: () => waiting.size === 0,
+
+    /** Whether it has ever said anything. */
+    hasAnswered: () => answered,
+
+    /** Takes the worker for lost, which says nothing any more. @param {string} details */
+    abandon(details) {
+      if (worker !== null) lose(details);
+    },
+
     /**
      * Names a request; it travels once, with the first task that carries the key.
-     * @param {EngineRequest} request
+     * @param {NamedRequest} request
      * @param {number | null} [from] the key of a request with the same tables, whose study is used again
      */
     name(request, from) {
-      const key = nextKey++;
+      const key = book.next++;
       requests.set(key, request);
       if (from !== undefined && from !== null && requests.has(from)) bases.set(key, from);
       return key;
     },
 
+    release,
+
     /** @param {number} key */
     forget(key) {
       bases.delete(key);
-      const request = requests.get(key);
-      if (!requests.delete(key) || worker === null || !told.delete(key)) return;
-      // Another study may hold the same tables, with other settings.
-      worn ||= isLarge(request) && ![...requests.values()].some(isLarge);
-      if (worn && waiting.size === 0) stop();
-      else ask({ kind: "close", key }).catch(() => {});
+      release(key);
+      requests.delete(key);
     },
 
     /** Gives up everything asked about one study; the rest is asked again. @param {number} key */
     giveUp(key) {
-      const given = [...waiting].filter(([, one]) => "key" in one.task && one.task.key === key);
+      const given = [...waiting].filter(([, one]) => keysOf(one.task).includes(key));
       if (given.length === 0) return;
       for (const [id] of given) waiting.delete(id);
       restart();

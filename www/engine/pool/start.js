@@ -3,7 +3,7 @@
 import { unpacked } from "../../text/packed.js";
 import { compileWasm } from "../wasm.js";
 import { lacksMemory } from "../fault.js";
-import { makeClient } from "./client.js";
+import { makePool } from "./pool.js";
 
 /** @param {string} id */
 function carriedText(id) {
@@ -28,7 +28,7 @@ function workerAddresses() {
   return types === undefined ? rules : types.createPolicy("pool", rules);
 }
 
-export async function startClient() {
+export async function startPool() {
   if (typeof WebAssembly === "undefined") throw unavailable("wasm-unavailable", "WebAssembly is not defined");
   /** @type {WebAssembly.Module} */
   let module;
@@ -41,7 +41,7 @@ export async function startClient() {
   try {
     const script = new Blob([await unpacked(carriedText("worker")).text()], { type: "text/javascript" });
     const address = workerAddresses().createScriptURL(URL.createObjectURL(script));
-    return makeClient(module, () => new Worker(address));
+    return makePool(module, () => new Worker(address));
   } catch (error) {
     throw unavailable("worker-unavailable", error);
   }

@@ -1,0 +1,59 @@
+/** Questions about what has been fitted: single maps, reports, and several decompositions together. */
+
+/** @import { Pool } from "../engine/pool/pool.js" */
+/** @import { Fitting } from "./fitting.js" */
+
+/**
+ * @param {{ read: () => SessionState, write: (patch: Partial<SessionState>) => void }} store
+ * @param {() => Pool | null} pool
+ * @param {(fault: unknown) => void} fail
+ * @param {Fitting} fitting
+ */
+export function makeInquiries(store, pool, fail, fitting) {
+  /** @param {number} id */
+  const answerOf = (id) => store.read().decompositions.find((one) => one.id === id)?.answer ?? null;
+
+  /** Asks for something that takes a while. @param {(engine: Pool, take: (step: FitProgress) => void) => Promise<Blob>} job */
+  async function inTime(job) {
+    const engine = pool();
+    if (engine === null) return null;
+    try {
+      return await job(engine, ({ done, total }) => {
+        store.write({ progress: { done, total, left: null, about: false } });
+      });
+    } catch (fault) {
+      fail(fault);
+      return null;
+    } finally {
+      store.write({ progress: null });
+    }
+  }
+
+  return {
+    /** Shows another map of the table. @param {number} index */
+    async choose(index) {
+      const engine = pool();
+      const { answer } = store.read();
+      const map = answer?.maps[index];
+      if (engine === null || answer === null || map === undefined) return;
+      if ("error" in map) {
+        store.write({ answer: { ...answer, chosen: index, sheet: null } });
+        return;
+      }
+      store.write({ answer: { ...answer, chosen: index } });
+      try {
+        const sheet = await engine.ask({ kind: "sheet", key: answer.key, index });
+        const now = store.read().answer;
+        if (now?.key === answer.key && now.chosen === index) store.write({ answer: { ...now, sheet } });
+      } catch (fault) {
+        if (store.read().answer?.key === answer.key) fail(fault);
+      }
+    },
+
+    /** The whole report of the present answer. @returns {Promise<Blob | null>} */
+    async report() {
+      const { answer } = store.read();
+      return answer === null ? null : inTime((engine, take) => engine.ask({ kind: "report", key: answer.key }, take));
+    },
+  };
+}
