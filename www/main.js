@@ -1,6 +1,7 @@
 /** Puts the page together: one session, its views, and the engine. */
 
 import { startPool } from "./engine/pool/start.js";
+import { carriedExamples } from "./intake/examples.js";
 import { takeDropsAndPastes } from "./intake/drop.js";
 import { makeSession } from "./session/session.js";
 import { writeWords } from "./text/words.js";
@@ -24,6 +25,8 @@ import { showUnderstood } from "./views/understood.js";
 import { showUndo } from "./views/undo.js";
 
 need("unstarted", HTMLElement).remove();
+/** @import { Pool } from "./engine/pool/pool.js" */
+
 const session = makeSession();
 
 addEventListener("error", (event) => {
@@ -57,14 +60,24 @@ for (const show of [
 }
 takeDropsAndPastes(session, need("drop", HTMLElement));
 
+/** When nothing else is to be done, the workers get warm on an invented map. @param {Pool} pool */
+function warmUpLater(pool) {
+  const [example] = carriedExamples();
+  if (example === undefined) return;
+  const files = [example.maps, example.electrodes].flatMap((file) => file ?? []);
+  const idle = globalThis.requestIdleCallback ?? ((/** @type {() => void} */ job) => setTimeout(job, 200));
+  idle(() => pool.warmUp({ files }));
+}
+
 startPool()
-  .then(async (client) =>
+  .then(async (client) => {
     session.engineReady(
       client,
       await client.ask({ kind: "program" }),
       await client.ask({ kind: "heads" }),
       await client.ask({ kind: "choices" }),
       [],
-    ),
-  )
+    );
+    warmUpLater(client);
+  })
   .catch((error) => session.fail(error));

@@ -184,7 +184,12 @@ export function settingsBeside(inputs, other) {
  * @returns {Decomposition[]}
  */
 export function mirrored(state) {
-  const { decompositions, current, inputs, settings, example, answer, failure } = state;
+  const { current, inputs, settings, example, answer, failure } = state;
+  // Rasters are kept for the map in view alone.
+  const spare = (/** @type {Decomposition} */ one) => one.id !== current && one.answer?.sheet;
+  const decompositions = !state.decompositions.some(spare)
+    ? state.decompositions
+    : state.decompositions.map((one) => (one.answer !== null && spare(one) ? { ...one, answer: { ...one.answer, sheet: null } } : one));
   const before = decompositions.find(({ id }) => id === current);
   if (before === undefined || MIRRORED.every((key) => before[key] === state[key])) return decompositions;
   const changed = before.settings !== settings || before.inputs !== inputs;

@@ -249,7 +249,7 @@ export function makeFitting(store, pool, fail) {
     };
     runs.set(id, run);
     begin(run);
-    if (isCurrent(id)) store.write({ phase: "busy", failure: null, progress: progress(), stopped: hasUnfinished() });
+    if (isCurrent(id)) store.write({ phase: "busy", failure: null, progress: progress() });
     else if (one.failure !== null) writeEntry(id, { failure: null });
     try {
       if (isCurrent(id)) {

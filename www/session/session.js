@@ -284,12 +284,13 @@ export function makeSession() {
   async function ask(earlier) {
     const { current, answer: before } = store.read();
     const back = earlier !== undefined && (before === null || earlier.inputs === before.inputs) ? earlier : null;
-    const current_first = fitting.start(current, (code) => {
+    const answered = fitting.start(current, (code) => {
       // Without an answer only what cannot be read at all goes again; tables stay, to be mended.
       if (back !== null && (before !== null || isUnreadable(code))) refuse(back);
     });
     fitting.startOthers();
-    await current_first;
+    if (store.read().stopped) store.write({ stopped: fitting.hasUnfinished() });
+    await answered;
   }
 
   /** Asks about what has changed. */
@@ -544,6 +545,9 @@ export function makeSession() {
       fitting.cancel();
       store.write({ phase: fitting.restingPhase(), progress: null, stopped: true });
     },
+
+    /** Whether something was given up that can be fitted. */
+    hasUnfinished: () => fitting.hasUnfinished(),
 
     /** Goes on with what was given up. */
     fitRest() {

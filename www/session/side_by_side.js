@@ -45,12 +45,9 @@ export function makeSideBySide(store, pool, { fitting, step, askChanged, choose 
       }
       const now = find();
       if (wanted !== id || now === undefined) return;
-      const { answer: before, decompositions } = store.read();
+      const { answer: before } = store.read();
       const same = now.answer !== null && now.answer.key === one.answer?.key;
-      store.write({
-        ...asCurrent({ ...now, answer: now.answer === null ? null : { ...now.answer, sheet: same ? sheet : null } }),
-        decompositions: decompositions.map((other) => (other.answer?.sheet ? { ...other, answer: { ...other.answer, sheet: null } } : other)),
-      });
+      store.write(asCurrent({ ...now, answer: now.answer === null ? null : { ...now.answer, sheet: same ? sheet : null } }));
       if (before !== null) engine.rest(before.key);
       engine.reorder();
       const { answer } = store.read();

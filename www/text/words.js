@@ -49,10 +49,12 @@ const WORDS = {
   others: "Further files",
   "others.hint": "Any number of files in any order, told apart by what is in them: maps, electrodes, coordinate system, channels, labels, sphering matrix.",
   "pick.several": "Pick files",
+  "pick.beside": "Add a decomposition",
   "pick.sphering": "Pick the sphering matrix",
   remove: "Remove",
   undo: "Undo",
   undone: "Undone",
+  "undo.both": "Keep both",
   "undo.sphering": "It is the sphering matrix of the former",
   automatic: "automatic",
 
@@ -62,6 +64,7 @@ const WORDS = {
   "state.answered": "Answered",
   "state.failed": "That did not work",
   "state.stopped": "Stopped",
+  "fit-rest": "Fit the rest",
   cancel: "Stop",
 
   choice: "Map of the table",
@@ -238,9 +241,15 @@ export function word(code) {
   return text;
 }
 
-/** @param {number} done @param {number} total */
-export function progressText(done, total) {
-  return `${done.toLocaleString("en-GB")} of ${total.toLocaleString("en-GB")} maps fitted`;
+/** @param {number} seconds */
+function leftText(seconds) {
+  return seconds < 90 ? `${Math.max(1, Math.round(seconds))} s` : `${Math.round(seconds / 60)} min`;
+}
+
+/** @param {Progress} progress */
+export function progressText({ done, total, left, about }) {
+  const text = `${done.toLocaleString("en-GB")} of ${about ? "about " : ""}${total.toLocaleString("en-GB")} maps fitted`;
+  return left === null ? text : `${text}, ${leftText(left)} left`;
 }
 
 /** @param {number} count @param {boolean} later */

@@ -13,7 +13,7 @@ function isWaiting({ phase, inputs, progress, stopped }) {
 
 /** @param {SessionState} state */
 function statusText(state) {
-  if (state.progress !== null) return progressText(state.progress.done, state.progress.total);
+  if (state.progress !== null) return progressText(state.progress);
   if (state.stopped) return word("state.stopped");
   if (isWaiting(state)) return waitingText(namedFiles(state.inputs));
   return word(`state.${state.phase}`);
@@ -29,6 +29,12 @@ export function showStatus(session) {
   const cancel = need("cancel", HTMLButtonElement);
   cancel.addEventListener("click", () => {
     session.cancel();
+    need("main", HTMLElement).focus();
+  });
+
+  const rest = need("fit-rest", HTMLButtonElement);
+  rest.addEventListener("click", () => {
+    session.fitRest();
     need("main", HTMLElement).focus();
   });
 
@@ -63,6 +69,7 @@ export function showStatus(session) {
     status.classList.toggle("small", !isWaiting(state));
     status.classList.toggle("unseen", state.phase === "answered" && !working && !state.stopped);
     cancel.hidden = !working;
+    rest.hidden = working || !state.stopped || !session.hasUnfinished();
     progress.hidden = !working;
     if (state.progress === null) progress.removeAttribute("value");
     else progress.value = state.progress.done / state.progress.total;

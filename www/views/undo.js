@@ -23,6 +23,11 @@ export function showUndo(session) {
     session.takeAsSphering();
     button.focus();
   });
+  const both = need("keep-both", HTMLButtonElement);
+  both.addEventListener("click", () => {
+    session.keepBoth();
+    button.focus();
+  });
   document.addEventListener("keydown", (event) => {
     const wanted = (event.ctrlKey || event.metaKey) && !event.shiftKey && !event.altKey && event.key === "z";
     // A text field has an undo of its own.
@@ -42,6 +47,7 @@ export function showUndo(session) {
     (_, { said }) => {
       need("said", HTMLElement).textContent = said === null ? "" : saidText(said);
       sphering.hidden = said?.sphering === undefined;
+      both.hidden = said?.former === undefined;
       // Who dropped files further down sees what became of them.
       if (said !== null && !need("intake", HTMLElement).contains(document.activeElement)) line.scrollIntoView({ block: "nearest" });
     },
