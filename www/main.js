@@ -62,7 +62,7 @@ takeDropsAndPastes(session, need("drop", HTMLElement));
 
 /** When nothing else is to be done, the workers get warm on an invented map. @param {Pool} pool */
 function warmUpLater(pool) {
-  const [example] = carriedExamples();
+  const [example] = carriedExamples().sort((a, b) => b.maps.content.length - a.maps.content.length);
   if (example === undefined) return;
   const files = [example.maps, example.electrodes].flatMap((file) => file ?? []);
   const idle = globalThis.requestIdleCallback ?? ((/** @type {() => void} */ job) => setTimeout(job, 200));
@@ -76,7 +76,11 @@ startPool()
       await client.ask({ kind: "program" }),
       await client.ask({ kind: "heads" }),
       await client.ask({ kind: "choices" }),
-      [],
+      {
+        relative: await client.ask({ kind: "columns", unit: "relative" }),
+        uV: await client.ask({ kind: "columns", unit: "uV" }),
+        V: await client.ask({ kind: "columns", unit: "V" }),
+      },
     );
     warmUpLater(client);
   })

@@ -468,11 +468,13 @@ type WorkerTask =
   | { kind: "program" }
   | { kind: "heads" }
   | { kind: "choices" }
+  | { kind: "columns"; unit: MapUnit }
   | { kind: "roleOf"; name: string; content: InwardContent }
   | { kind: "warm"; request: EngineRequest }
   | { kind: "open"; key: number }
   | { kind: "fit"; key: number; first: number; last: number | null; opening: boolean }
   | { kind: "sheet"; key: number; index: number }
+  | { kind: "thumbnails"; key: number; indexes: number[]; size: number }
   | { kind: "report"; key: number }
   | { kind: "close"; key: number };
 

@@ -77,7 +77,7 @@ test("a worker that held a large file is replaced when the file is given up and 
     assert.equal(workers[0].ended, true);
     // The next question about the other study starts it afresh.
     await pool.ask({ kind: "sheet", key: small, index: 1 });
-    assert.deepEqual(workers.at(-1).told.find((message) => message.kind === "sheet").request, { maps: SMALL });
+    assert.deepEqual(workers.at(-1).told.find((message) => message.kind === "sheet").named, { [small]: { maps: SMALL } });
     assert.equal(alive(workers), 1);
   }
 });

@@ -77,14 +77,11 @@ function breathe() {
   });
 }
 
-/** @param {ReportMap} map @returns {MapSummary} */
-function summaryOf(map) {
+/** A line as it can be shown whatever the map's name holds. @param {MapSummary} map @returns {MapSummary} */
+function shownRow(map) {
   const name = harmless(map.name);
-  if ("error" in map) return { name, error: /** @type {UnfittedMap} */ (map).error };
-  const { dipole, residual_variance: rv, ...rest } = /** @type {any} */ (map);
-  const power = rest.measured.reduce((/** @type {number} */ sum, /** @type {number} */ v) => sum + v * v, 0) / rest.measured.length;
-  const variance = rest.activation_sd === null ? null : power * rest.activation_sd ** 2;
-  return { ...rest, ...dipole, name, rv, power, variance, region: "", cells: [], measured: undefined, projected: undefined, residual: undefined };
+  if (name === map.name) return map;
+  return "error" in map ? { ...map, name } : { ...map, name, cells: map.cells.map(harmless) };
 }
 
 /**
@@ -111,7 +108,7 @@ async function warmUpOn(request) {
   const study = workerEngine.open(request);
   const end = performance.now() + WARMING_MS;
   while (performance.now() < end && tasksAtHand === 1) {
-    study.fitWithin(0, SLICE_MS / 4);
+    study.rowsWithin(0, study.count, SLICE_MS / 4);
     await breathe();
   }
   study.close();
@@ -139,6 +136,8 @@ async function answerTask(message) {
       return self.postMessage({ id, value: workerEngine.heads });
     case "choices":
       return self.postMessage({ id, value: workerEngine.choices() });
+    case "columns":
+      return self.postMessage({ id, value: workerEngine.columns(message.unit) });
     case "roleOf":
       return self.postMessage({ id, value: workerEngine.roleOf(message.name, message.content) });
     case "warm":
@@ -152,7 +151,7 @@ async function answerTask(message) {
       const { first, last } = message;
       const end = Math.min(last ?? study.count, study.count);
       await inSlices(message.key, study, { first, last: end }, (done, milliseconds) => {
-        const maps = study.fitWithin(done, milliseconds).slice(0, end - done).map(summaryOf);
+        const maps = study.rowsWithin(done, end, milliseconds).map(shownRow);
         self.postMessage({ id, progress: { first: done, maps } });
         return maps.length;
       });
@@ -161,6 +160,11 @@ async function answerTask(message) {
     case "sheet": {
       const sheet = studyOf(message.key).sheet(message.index);
       return self.postMessage({ id, value: sheet }, { transfer: rastersOf(sheet) });
+    }
+    case "thumbnails": {
+      const small = studyOf(message.key).thumbnails(message.indexes, message.size);
+      const transfer = new Set(small?.measured.map(({ buffer }) => buffer));
+      return self.postMessage({ id, value: small }, { transfer: [...transfer] });
     }
     case "report": {
       const study = studyOf(message.key);

@@ -50,6 +50,28 @@ export function makeInquiries(store, pool, fail, fitting) {
       }
     },
 
+    /**
+     * Small rasters of maps of a decomposition; null where there are none or the tables are others meanwhile.
+     * @param {number} id
+     * @param {number[]} indexes
+     * @param {number} size
+     * @returns {Promise<Thumbnails | null>}
+     */
+    async thumbnails(id, indexes, size) {
+      const answer = answerOf(id);
+      const engine = pool();
+      if (answer === null || engine === null) return null;
+      const { key } = answer;
+      try {
+        const small = await engine.ask({ kind: "thumbnails", key, indexes, size });
+        return answerOf(id)?.key === key ? small : null;
+      } catch (fault) {
+        // Of an answer that gave way meanwhile nothing is said.
+        if (answerOf(id)?.key === key) fail(fault);
+        return null;
+      }
+    },
+
     /** The whole report of the present answer. @returns {Promise<Blob | null>} */
     async report() {
       const { answer } = store.read();

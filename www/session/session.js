@@ -57,13 +57,15 @@ export function makeSession() {
     }),
   );
 
+  /** Columns of the table of maps by the maps' unit. @type {Partial<Record<MapUnit, TableColumn[]>>} */
+  let columnsOf = {};
   const store = {
     ...held,
     /** @param {Partial<SessionState>} patch */
     write(patch) {
       const state = { ...held.read(), ...patch };
-      const decompositions = mirrored(state);
-      held.write(decompositions === state.decompositions ? patch : { ...patch, decompositions });
+      const columns = columnsOf[state.settings.mapUnit] ?? state.columns;
+      held.write({ ...patch, decompositions: mirrored(state), columns });
     },
   };
 
@@ -320,12 +322,13 @@ export function makeSession() {
      * @param {Program} program
      * @param {CatalogueHead[]} heads
      * @param {ChoiceOffer[]} offers
-     * @param {TableColumn[]} columns
+     * @param {Record<MapUnit, TableColumn[]>} columns
      */
     engineReady(ready, program, heads, offers, columns) {
       client = ready;
       announce(ready);
-      store.write({ phase: store.read().phase === "failed" ? "failed" : "ready", program, heads, offers, columns });
+      columnsOf = columns;
+      store.write({ phase: store.read().phase === "failed" ? "failed" : "ready", program, heads, offers });
       if (store.read().inputs.maps !== null) ask();
     },
 
