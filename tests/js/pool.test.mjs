@@ -2,6 +2,7 @@
 import assert from "node:assert/strict";
 import { test } from "node:test";
 import { makeClient } from "../../www/engine/pool/client.js";
+import { makePool } from "../../www/engine/pool/pool.js";
 
 const LARGE = new Uint8Array(16 * 2 ** 20 + 1);
 const SMALL = new Uint8Array(16 * 2 ** 20);
@@ -89,4 +90,108 @@ test("small files replace nothing", async () => {
   pool.forget(first);
   await pool.ask({ kind: "program" });
   assert.deepEqual(workers.map((worker) => worker.ended), [false]);
+});
+
+/** Workers that fit: sixteen maps a turn, each told as the worker's number and the map's. `spoil` may end a turn otherwise. */
+function fitters(count, spoil = () => undefined) {
+  const workers = [];
+  const start = () => {
+    const listeners = {};
+    const worker = {
+      number: workers.length,
+      closed: [],
+      ended: false,
+      addEventListener: (name, listener) => (listeners[name] = listener),
+      terminate: () => (worker.ended = true),
+      say: (data) => !worker.ended && listeners.message({ data }),
+      die: () => listeners.error({ preventDefault() {}, message: "gone" }),
+      async postMessage({ id, kind, first, last, opening, key }) {
+        if (kind === "close") worker.closed.push(key);
+        if (kind === "close") return worker.say({ id, value: null });
+        if (kind !== "fit") return;
+        if (opening) worker.say({ id, progress: { study: { count, preamble: {} } } });
+        for (let at = first; at < Math.min(last ?? count, count); at += 16) {
+          await new Promise((resume) => setTimeout(resume, 1));
+          const told = spoil(worker, at);
+          if (told === "death") return worker.die();
+          if (told !== undefined) return worker.say({ id, fault: { code: told } });
+          const maps = Array.from({ length: Math.min(16, Math.min(last ?? count, count) - at) }, (_, k) => [worker.number, at + k]);
+          worker.say({ id, progress: { first: at, maps } });
+        }
+        worker.say({ id, value: null });
+      },
+    };
+    workers.push(worker);
+    return worker;
+  };
+  const pool = makePool({}, start, 2);
+  const got = [];
+  const opened = [];
+  const fit = (rank, ranges = [{ first: 0, last: null }], known = null) => {
+    const key = pool.name({ files: [{ name: "a", content: "a" }] });
+    return pool.fit(
+      { key, count: known, rank: () => rank, opened: (study) => opened.push(study), fitted: (first, maps) => got.push(...maps) },
+      ranges,
+    );
+  };
+  /** Whether each map up to the end was told once. */
+  const complete = (from = 0) => {
+    const numbers = got.map(([, map]) => map).sort((a, b) => a - b);
+    assert.deepEqual(numbers, Array.from({ length: count - from }, (_, k) => from + k));
+  };
+  return { pool, workers, fit, got, opened, complete };
+}
+
+test("maps of a long table are shared among workers, each told once", async () => {
+  const { fit, got, opened, complete, workers } = fitters(3000);
+  await fit(0);
+  complete();
+  assert.equal(opened.length, 1);
+  assert.equal(new Set(got.map(([worker]) => worker)).size, 3);
+  // The current one's tables stay open; those of others are closed when they are done.
+  assert.deepEqual(workers.flatMap(({ closed }) => closed), []);
+  await fit(1);
+  assert.ok(workers.flatMap(({ closed }) => closed).length >= 2);
+});
+
+test("a short table is fitted by one worker; what is missing alone is fitted", async () => {
+  const short = fitters(150);
+  await short.fit(1);
+  short.complete();
+  assert.equal(new Set(short.got.map(([worker]) => worker)).size, 1);
+  const rest = fitters(3000);
+  await rest.fit(0, [{ first: 700, last: 3000 }], 3000);
+  rest.complete(700);
+  assert.equal(rest.opened.length, 0);
+});
+
+test("what a lost or trapped worker has not told is fitted by another, and nothing else again", async () => {
+  for (const end of ["death", "engine-trap"]) {
+    let spoilt = 0;
+    const { fit, complete, workers } = fitters(3000, ({ number }, at) => (number === 1 && at > 1000 && spoilt++ < 1 ? end : undefined));
+    await fit(0);
+    complete();
+    assert.equal(spoilt > 0 && workers.length > 3, true, end);
+  }
+});
+
+test("maps that end every worker are given up after three tries, and the fault is told", async () => {
+  let tries = 0;
+  const { fit } = fitters(3000, (_, at) => (at === 1600 ? (tries++, "engine-trap") : undefined));
+  await assert.rejects(fit(0), { code: "engine-trap" });
+  assert.equal(tries, 3);
+});
+
+test("cancelling ends the work, and the next goes on", async () => {
+  const { pool, fit, got, complete } = fitters(3000);
+  const asked = fit(0);
+  await new Promise((resume) => setTimeout(resume, 30));
+  const before = got.length;
+  pool.cancel();
+  await assert.rejects(asked, { code: "given-up" });
+  await new Promise((resume) => setTimeout(resume, 30));
+  assert.ok(before > 0 && before < 3000 && got.length === before, `${before}, ${got.length}`);
+  got.length = 0;
+  await fit(0);
+  complete();
 });

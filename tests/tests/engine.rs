@@ -15,11 +15,19 @@ fn scripts_find_what_they_rely_on() {
 }
 
 #[test]
-fn the_page_replaces_workers_that_held_large_files() {
+fn the_page_shares_work_among_workers_and_replaces_them() {
     let printed = Node::with_engine()
         .run("js/pool.test.mjs", &["--test-reporter=spec"], "")
         .unwrap_or_else(|why| panic!("{why}"));
-    assert!(printed.contains("pass 4") && printed.contains("fail 0"), "{printed}");
+    assert!(printed.contains("pass 9") && printed.contains("fail 0"), "{printed}");
+}
+
+#[test]
+fn the_page_pairs_and_names_files_as_their_names_say() {
+    let printed = Node::with_engine()
+        .run("js/decompositions.test.mjs", &["--test-reporter=spec"], "")
+        .unwrap_or_else(|why| panic!("{why}"));
+    assert!(printed.contains("pass 7") && printed.contains("fail 0"), "{printed}");
 }
 
 /// A request as JSON for Node and its report made natively.

@@ -59,7 +59,10 @@ export function makeSchedule(members) {
     const rest = job.pieces.shift();
     if (rest === undefined) return null;
     const fitting = job.speed === 0 ? 0 : Math.round(PIECE_MS / job.speed / 16) * 16;
-    const size = Math.min(PIECES.most, Math.max(PIECES.least, fitting));
+    // Towards the end pieces get short, so that all workers end together.
+    const left = [rest, ...job.pieces].reduce((sum, { first, last }) => sum + (last ?? first) - first, 0);
+    const share = Math.ceil(left / members.length / 32) * 16;
+    const size = Math.min(PIECES.most, Math.max(PIECES.least, Math.min(fitting, share)));
     // Of an unknown length: the first ones, and the rest when the length is told.
     const whole = job.count !== null && job.count <= WHOLE;
     const length = job.count === null ? WHOLE : size;
