@@ -465,6 +465,13 @@ def ways():
     sample("a matrix of numbers, a row for each electrode", maps_file("matrix.txt", text([row[1:] for row in map_rows(None)], " "), columns=3, delimiter=("blanks", "found"), **bare), maps=anonymous, notes=["labels-by-order"])
     sample("a matrix of numbers, a column for each electrode", maps_file("matrix_turned.csv", text([row[1:] for row in turned[1:]], ","), rows=3, columns=21, delimiter=("comma", "found"), **bare),
            maps=anonymous, orientation=in_columns, notes=["labels-by-order"])
+    recorded = file("recorded_channels.tsv", text([["name", "type", "units"], ["ECG1", "ECG", "uV"], *([label, "EEG", "uV"] for label in LABELS)]), "channels", rows=22, columns=3, label=None, passed_over=["units"])
+    sample("a matrix of numbers in the order of the table of channels, not in that of the electrodes", maps_file("matrix_recorded.txt", text([row[1:] for row in map_rows(None)], " "), columns=3, delimiter=("blanks", "found"), **bare),
+           recorded, electrodes=electrodes_file("electrodes_backwards.tsv", text(place_rows(labels=LABELS[::-1]))), maps=anonymous, notes=["labels-by-order"])
+    with_heart = [*map_rows(None)[:5], ["ECG1", "40.00", "-3.00", "12.00"], *map_rows(None)[5:]]
+    every = file("every_channel.tsv", text([["name", "type", "units"], *([row[0], "ECG" if row[0] == "ECG1" else "EEG", "uV"] for row in with_heart)]), "channels", rows=22, columns=3, label=None, passed_over=["units"])
+    sample("a matrix of numbers with a row for every channel of the table of channels", maps_file("matrix_of_channels.txt", text([row[1:] for row in with_heart], " "), rows=22, columns=3, delimiter=("blanks", "found"), **bare),
+           every, maps=anonymous, notes=["labels-by-order", "not-scalp"], labels={"not_scalp": ["ECG1"]})
     column = "".join(VALUES[label][0] + "\n" for label in LABELS)
     sample("a column of numbers", maps_file("column.txt", column, columns=1, delimiter=("blanks", "found"), **bare), maps=[["map 1", "lamp"]], notes=["labels-by-order"])
     row = " ".join(VALUES[label][0] for label in LABELS) + "\n"

@@ -331,8 +331,14 @@ pub fn message(finding: &Finding) -> String {
             if value("radius") == "yes" { ", at the distance given" } else { "" }
         ),
         Code::LabelsByOrder => format!(
-            "The values for {} in the {input} have no labels; they were taken in the order of the labels known.",
-            counted("count", "electrode")
+            "The values for {} in the {input} have no labels; they were taken in the order of {}.{}",
+            counted("count", "electrode"),
+            if value("order").is_empty() { "the labels known".to_owned() } else { format!("“{}”", value("order")) },
+            if value("other").is_empty() {
+                String::new()
+            } else {
+                format!(" In “{}” the same stand in another order: if that is right, give a list of labels.", value("other"))
+            }
         ),
         Code::OrientationAssumed => format!(
             "The {input} is square, {} by {}: each {} was taken as an electrode.",

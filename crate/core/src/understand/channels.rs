@@ -7,6 +7,8 @@ use crate::finding::{Code, Error, Finding, Place};
 /// What a table of channels declares.
 #[derive(Debug, Default)]
 pub(super) struct Declared {
+    /// In the order of the recording.
+    pub all: Vec<Label>,
     pub scalp: Vec<Label>,
     pub other: Vec<Label>,
     pub bad: Vec<Label>,
@@ -32,6 +34,7 @@ pub(super) fn read_channels(grid: &Grid<'_>, found: &mut Found) -> Result<Declar
         let says = |column: Option<usize>, word: &str| {
             column.is_some_and(|column| grid.word(row, column).eq_ignore_ascii_case(word))
         };
+        declared.all.push(name.clone());
         match kind {
             Some(_) if says(kind, "eeg") => declared.scalp.push(name.clone()),
             Some(column) if !crate::read::is_missing(grid.word(row, column)) => declared.other.push(name.clone()),

@@ -174,11 +174,24 @@ impl Chosen {
             let numbers = (1..).map(|number: usize| Label::new(&number.to_string()));
             read.iter_mut().zip(numbers).for_each(|(electrode, number)| electrode.label = number);
         }
-        let known: Vec<Vec<Label>> = list
+        let mut declared = channels::Declared::default();
+        let channel_grid = self.channels.and_then(grid);
+        if let Some(grid) = channel_grid {
+            declared = channels::read_channels(grid, &mut found)?;
+            columns.push((self.channels.unwrap_or_default(), std::mem::take(&mut found.columns)));
+        }
+        // Whose order unlabelled values have: a list of labels is there for that, a table of channels tells the order of the
+        // recording, one of electrodes has any.
+        let recorded = [&declared.scalp, &declared.all].map(|labels| (channel_grid, labels.clone()));
+        let known: Vec<(Option<&Grid<'_>>, Vec<Label>)> = list
             .iter()
-            .map(|(_, list)| list.clone())
-            .chain(electrodes.iter().map(|(read, _, _)| read.iter().map(|e| e.label.clone()).collect()))
+            .map(|(grid, list)| (Some(*grid), list.clone()))
+            .chain(recorded.into_iter().filter(|(_, labels)| !labels.is_empty()))
+            .chain(
+                electrodes.iter().map(|(read, _, grid)| (Some(*grid), read.iter().map(|e| e.label.clone()).collect())),
+            )
             .collect();
+        let (of_order, known): (Vec<_>, Vec<_>) = known.into_iter().unzip();
         let beside = if self.electrodes == Some(self.maps) {
             columns
                 .last()
@@ -226,7 +239,19 @@ impl Chosen {
         by_order.dedup();
         for file in by_order {
             let place = Place { file: found.given_name(file), ..Place::input("maps") };
-            found.notes.push(Finding::new(Code::LabelsByOrder).at(place).with("count", maps.labels.len()));
+            let order = known.iter().position(|labels| *labels == maps.labels).and_then(|at| *of_order.get(at)?);
+            let keys = |labels: &[Label]| labels.iter().map(Label::key).collect::<HashSet<String>>();
+            let other = known.iter().zip(&of_order).find(|(labels, _)| {
+                labels.len() == maps.labels.len() && **labels != maps.labels && keys(labels) == keys(&maps.labels)
+            });
+            let name = |grid: Option<&Grid<'_>>| grid.map(|grid| found.file_name(grid)).unwrap_or_default();
+            found.notes.push(
+                Finding::new(Code::LabelsByOrder)
+                    .at(place)
+                    .with("count", maps.labels.len())
+                    .with("order", name(order))
+                    .with("other", name(other.and_then(|(_, grid)| *grid))),
+            );
         }
         let written = [maps_grid.part.map(String::from), Some(found.name(maps_grid.file))];
         if wishes.maps_are.is_none()
@@ -251,14 +276,6 @@ impl Chosen {
         let times = self.times.and_then(grid);
         let (columns_are, moments) = sequence::sequence(&mut maps, maps_grid, times, wishes, &mut found)?;
 
-        let declared = match self.channels.and_then(grid) {
-            Some(grid) => {
-                let declared = channels::read_channels(grid, &mut found)?;
-                columns.push((self.channels.unwrap_or_default(), std::mem::take(&mut found.columns)));
-                declared
-            }
-            None => channels::Declared::default(),
-        };
         let described = coordinates::read_coordinates(records);
         let electrodes = electrodes.map(|(read, _, _)| read).or_else(|| {
             // A list of labels alone names the electrodes, if it is not the list of a matrix.
