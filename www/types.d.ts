@@ -328,6 +328,8 @@ interface GlueStudy {
   sheet(index: number): Sheet;
   /** The same tables under other settings; nothing is read again. */
   with(settings: EngineSettings): GlueStudy;
+  /** Other tables; what was prepared is used again where head and electrodes are the same. */
+  beside(request: EngineRequest): GlueStudy;
   free(): void;
 }
 
@@ -371,6 +373,8 @@ interface Study {
   assess(index: number, what: string[]): object;
   /** The same tables under other settings; nothing is read again. Both studies go on and are closed one by one. */
   with(settings: EngineSettings): Study;
+  /** Other tables; what was prepared is used again where head and electrodes are the same. */
+  beside(request: EngineRequest): Study;
   close(): void;
   fitWithin(first: number, milliseconds: number): ReportMap[];
   rowsWithin(first: number, last: number, milliseconds: number): (MapRow | UnfittedMap)[];

@@ -151,6 +151,10 @@ export function makeEngine(compiled) {
         const changed = { ...kept, settings: structuredClone(settings) };
         return studyOn(changed, () => changed, first);
       },
+      beside(request) {
+        const first = use((opened, glue) => ({ glue, study: opened.beside(request) }));
+        return studyOn(request, () => keepRequest(request), first);
+      },
       close() {
         if (!closed && study !== null && owner === glue) study.free();
         closed = true;

@@ -27,6 +27,9 @@ const studyBases = new Map();
 /** @type {Map<number, Study>} */
 const studies = new Map();
 
+/** The study that was opened last: the next one may have its electrodes. It stays open until then. @type {Study | null} */
+let latestStudy = null;
+
 /** Tasks that are not answered yet: long ones give way to the others. */
 let tasksAtHand = 0;
 
@@ -59,10 +62,22 @@ function studyOf(key) {
   const { lenient, ...plain } = request;
   const base = studyBases.get(key);
   const before = base === undefined ? undefined : studies.get(base);
-  const opened = before?.with(plain.settings ?? {}) ?? workerEngine.open(plain);
+  const opened = before?.with(plain.settings ?? {}) ?? latestStudy?.beside(plain) ?? workerEngine.open(plain);
   const study = lenient ? withoutForeign(opened, plain.settings ?? {}) : opened;
+  const latest = latestStudy;
   studies.set(key, study);
+  latestStudy = study;
+  if (latest !== null && ![...studies.values()].includes(latest)) latest.close();
   return study;
+}
+
+/** @param {number} key */
+function closeStudy(key) {
+  const study = studies.get(key);
+  studies.delete(key);
+  namedRequests.delete(key);
+  studyBases.delete(key);
+  if (study !== latestStudy) study?.close();
 }
 
 /** Lets waiting messages in before the next slice. @returns {Promise<void>} */
@@ -181,10 +196,7 @@ async function answerTask(message) {
       return self.postMessage({ id, value: new Blob(parts, { type: "application/json" }) });
     }
     case "close":
-      studies.get(message.key)?.close();
-      studies.delete(message.key);
-      namedRequests.delete(message.key);
-      studyBases.delete(message.key);
+      closeStudy(message.key);
       return self.postMessage({ id, value: null });
   }
 }

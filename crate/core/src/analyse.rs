@@ -119,6 +119,14 @@ impl Study {
         Self::prepared(tables, settings, Some(self))
     }
 
+    /// Other files; the search is shared where head and electrodes are the same, and the digits are those of a new study.
+    ///
+    /// # Errors
+    /// As for [`Study::open`].
+    pub fn beside(&self, request: &Request) -> Result<Self, Error> {
+        Self::prepared(Arc::new(Tables::read(request)?), request.settings.clone(), Some(self))
+    }
+
     fn prepared(tables: Arc<Tables>, settings: Settings, before: Option<&Self>) -> Result<Self, Error> {
         settings.check(&tables.understood.maps.names)?;
         if settings.laplacian == Some(true) {

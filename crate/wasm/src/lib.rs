@@ -86,6 +86,12 @@ impl Study {
         self.0.with(wire::settings(&settings)?).map(Study).map_err(|error| thrown(&error))
     }
 
+    /// Other tables as by `open`; what was prepared is used again where head and electrodes are the same.
+    pub fn beside(&self, request: JsValue) -> Result<Study, JsValue> {
+        let inputs = Inputs::from_js(&request)?;
+        self.0.beside(&inputs.request()).map(Study).map_err(|error| thrown(&error))
+    }
+
     /// Number of maps.
     #[wasm_bindgen(getter)]
     pub fn count(&self) -> usize {
