@@ -9,7 +9,7 @@ import { makeSideBySide } from "./side_by_side.js";
 import { makeStore } from "./store.js";
 import { faultOf } from "../engine/fault.js";
 import { pageFault } from "../text/faults.js";
-import { emptyDecomposition, groupedInputs, mirrored, newDecompositions, nextId, SHARED } from "./decompositions.js";
+import { emptyDecomposition, groupedInputs, mirrored, newDecompositions, SHARED } from "./decompositions.js";
 import { heldBytes, isEmpty, namedFiles, NO_INPUTS, placedInputs } from "./inputs.js";
 import { isMisfit, isUnreadable } from "./help.js";
 import { differingSettings, firstLine, FIRST_SETTINGS, isOtherTable, settingsForOther } from "./settings.js";
@@ -443,16 +443,18 @@ export function makeSession() {
     /** Shows an invented map; what was put in before can be taken back. @param {Example} example */
     show(example) {
       const { inputs, settings, example: before, setAside, decompositions, current } = store.read();
+      const own = { ...settingsForOther(settings, KINDS), files: undefined, mapUnit: example.unit ?? FIRST_SETTINGS.mapUnit };
+      const tables = [example.maps, ...example.beside].map((maps) => ({ ...NO_INPUTS, electrodes: example.electrodes, maps }));
+      const told = { settings: own, example: { name: example.name, title: example.title, edited: false } };
+      const made = newDecompositions(tables, { ...emptyDecomposition(0), settings: own }, []).map((one) => ({ ...one, ...told }));
       // It takes the place of all that is there.
-      const id = nextId(decompositions);
-      const alone = decompositions.length > 1 ? { decompositions: [emptyDecomposition(id)], current: id, answer: null } : {};
+      const several = decompositions.length > 1 || made.length > 1;
       step(
         {
-          inputs: { ...NO_INPUTS, electrodes: example.electrodes, maps: example.maps },
-          settings: { ...settingsForOther(settings, KINDS), files: undefined, mapUnit: example.unit ?? FIRST_SETTINGS.mapUnit },
-          example: { name: example.name, title: example.title, edited: false },
+          inputs: tables[0],
+          ...told,
           setAside: before === null && !isEmpty(inputs) ? { inputs, settings, decompositions, current } : setAside,
-          ...alone,
+          ...(several ? { decompositions: made, current: made[0].id, answer: null } : {}),
         },
         ["input"],
       );
@@ -464,7 +466,8 @@ export function makeSession() {
       const { setAside } = store.read();
       if (setAside === null) return;
       const { inputs, settings, ...all } = setAside;
-      const back = all.decompositions.length > 1 ? backTo(all) : { inputs, settings };
+      const several = Math.max(all.decompositions.length, store.read().decompositions.length) > 1;
+      const back = several ? backTo(all) : { inputs, settings };
       step({ ...back, example: null, setAside: null }, ["input"]);
       askChanged();
     },
