@@ -81,7 +81,7 @@ def main():
     data, mixing = recording(rng, head, e)
     found = {"independent": independent(data, rng), "principal": principal(data)[0]}
     for name, maps in found.items():
-        names = [f"{name[0].upper()}{i + 1}" for i in range(maps.shape[1])]
+        names = [f"{name[0].upper()}C{i + 1}" for i in range(maps.shape[1])]
         rows = [[label] + [f"{v:.{DIGITS}f}" for v in row] for label, row in zip(LABELS, centred(maps))]
         write_table(f"night_{name}.tsv", [["label"] + names] + rows)
         c = centred(mixing)
