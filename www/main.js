@@ -6,8 +6,8 @@ import { takeDropsAndPastes } from "./intake/drop.js";
 import { makeSession } from "./session/session.js";
 import { writeWords } from "./text/words.js";
 import { showAnswer } from "./views/answer.js";
-import { showChoice } from "./views/choice.js";
 import { showColophon } from "./views/colophon.js";
+import { showDecompositions } from "./views/decompositions.js";
 import { showElectrodes } from "./views/electrodes.js";
 import { need } from "./views/element.js";
 import { showExamples } from "./views/examples.js";
@@ -18,8 +18,10 @@ import { showIntake } from "./views/intake.js";
 import { showMaps } from "./views/maps.js";
 import { showNotes } from "./views/notes.js";
 import { showNumbers } from "./views/numbers.js";
+import { showOverview } from "./views/overview.js";
 import { showSign } from "./views/sign.js";
 import { showStatus } from "./views/status.js";
+import { showTable } from "./views/table.js";
 import { showTerms } from "./views/terms.js";
 import { showUnderstood } from "./views/understood.js";
 import { showUndo } from "./views/undo.js";
@@ -43,7 +45,9 @@ for (const show of [
   showExamples,
   showFailure,
   showAnswer,
-  showChoice,
+  showDecompositions,
+  showOverview,
+  showTable,
   showMaps,
   showSign,
   showHeadViews,

@@ -13,7 +13,7 @@
     for (const name of Object.keys(exports).filter((name) => /^(analyse|open|program|study_\w+)$/.test(name))) {
       wrapped[name] = (...values) => {
         if (dead) throw new Error(`${name} was called in an instance that had trapped`);
-        if (armed && /fit|analyse/.test(name)) {
+        if (armed && /fit|rows|analyse/.test(name)) {
           armed = false;
           dead = true;
           exports.__wbindgen_malloc(8, 3);

@@ -342,6 +342,24 @@ impl Page {
         report
     }
 
+    /// Downloads a file by its button and reads what lands on disk.
+    pub fn download(&self, button: &str, name: &str) -> String {
+        let file = self.session.downloads().join(name);
+        let _ = std::fs::remove_file(&file);
+        self.click(button);
+        let (start, mut last) = (Instant::now(), String::new());
+        loop {
+            sleep(Duration::from_millis(40));
+            let text = std::fs::read_to_string(&file).unwrap_or_default();
+            // Half a file still grows.
+            if !text.is_empty() && text == last {
+                return text;
+            }
+            assert!(start.elapsed() < PATIENCE, "{}: no {name} was downloaded", self.browser.name());
+            last = text;
+        }
+    }
+
     fn downloaded(&self, ask: impl Fn()) -> Value {
         let file = self.session.downloads().join("inward-report.json");
         let _ = std::fs::remove_file(&file);

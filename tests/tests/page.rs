@@ -149,7 +149,7 @@ fn another_map_is_chosen(browser: Browser) {
     let page = answered(browser);
     let report = page.download_report();
     assert!(tells_percent(&page.text("#sentence"), explained(&report, 0)));
-    page.value("const c = document.querySelector('#map-choice'); c.selectedIndex = 1; c.dispatchEvent(new Event('change', { bubbles: true }))");
+    page.click("#ledger [data-index='1']");
     page.until("the second map", |page| {
         page.state() == "answered" && tells_percent(&page.text("#numbers"), explained(&report, 1))
     });

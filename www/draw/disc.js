@@ -41,7 +41,7 @@ const IMAGES = new WeakMap();
  * @param {number} stretch
  * @param {Theme} theme
  */
-function imageOfRaster(raster, size, stretch, theme) {
+export function imageOfRaster(raster, size, stretch, theme) {
   const known = IMAGES.get(raster);
   if (known?.theme === theme) return known.image;
   const image = document.createElement("canvas");

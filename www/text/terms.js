@@ -24,6 +24,11 @@ export const TERMS = [
     line: "One part of a decomposed recording: a map that stays and an activation that varies. Their signs can be swapped together.",
   },
   {
+    code: "decomposition",
+    words: ["decomposition", "decompositions"],
+    line: "A recording taken apart into components by one method: a table of maps, one for each component.",
+  },
+  {
     code: "activation",
     words: ["activation"],
     line: "How strongly a component is present, moment by moment; its scale is shared out arbitrarily between it and the map.",

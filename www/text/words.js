@@ -1,6 +1,6 @@
 /** Every sentence of the page, by code. */
 
-import { NO_BREAK, shortName, timeText } from "./figures.js";
+import { NO_BREAK, percentText, shortName, timeText, typeset } from "./figures.js";
 
 /** @type {Record<string, string>} */
 const WORDS = {
@@ -67,11 +67,46 @@ const WORDS = {
   "fit-rest": "Fit the rest",
   cancel: "Stop",
 
-  choice: "Map of the table",
-  "choice.previous": "Previous map",
-  "choice.next": "Next map",
+  "choice.previous": "Previous map of the list",
+  "choice.next": "Next map of the list",
   "choice.number": "Number in the table",
-  "choice.unfitted": "not fitted",
+
+  decompositions: "Decompositions",
+  "decompositions.add": "Add a decomposition",
+  "decomposition.name": "Name of the decomposition",
+  "decomposition.open": "Show",
+  "decomposition.now": "Shown",
+  "decomposition.more": "Subject and information",
+  "decomposition.subject": "Subject",
+  "decomposition.subject-hint": "Whose recording it is. Decompositions of one name and several subjects are compared over subjects.",
+  "decomposition.information": "Reduction of mutual information",
+  "decomposition.information-hint": "Where you have it from elsewhere, in whatever unit it is the same for all. A number, with a point for decimals.",
+
+  overview: "Maps",
+  "ledger.grouping": "Group by",
+  "ledger.order": "Sort by",
+  "ledger.rv-short": "RV",
+  "ledger.number": "number",
+  "ledger.depth": "depth",
+  "ledger.strength": "strength",
+  "ledger.region": "region",
+  "ledger.none": "nothing",
+  "ledger.most": "RV at most",
+  "ledger.slider": "Most residual variance of the maps listed",
+  "ledger.nothing": "No map has so little residual variance.",
+  "band.0": "At most 5 %",
+  "band.1": "Over 5 to 10 %",
+  "band.2": "Over 10 to 15 %",
+  "band.3": "Over 15 %",
+  unfitted: "Not fitted",
+  "ledger.boundary": "at the edge",
+
+  table: "Table of all numbers",
+  "table.hint": "Sorted by its heads. A copy is rounded as shown; files have all digits, residual variance as a fraction.",
+  "table.number": "No.",
+  "table.csv": "CSV",
+  "table.tsv": "TSV",
+  "table.json": "JSON",
 
   answer: "Answer",
   "answer.unchanged": "The answer in words is unchanged.",
@@ -252,9 +287,88 @@ export function progressText({ done, total, left, about }) {
   return left === null ? text : `${text}, ${leftText(left)} left`;
 }
 
-/** @param {number} count @param {boolean} later */
-export function furtherText(count, later) {
-  return `${count.toLocaleString("en-GB")} ${later ? "later" : "earlier"} maps`;
+/** @param {number} count @param {string} noun */
+function countText(count, noun) {
+  return `${count.toLocaleString("en-GB")}${NO_BREAK}${noun}${count === 1 ? "" : "s"}`;
+}
+
+/** Heading of a group of maps: a band of residual variance, a region, or those not fitted. @param {string} code @param {number} count */
+export function groupText(code, count) {
+  const title = WORDS[code] ?? `${code[0].toUpperCase()}${code.slice(1).replace("-", ", ")}`;
+  return typeset(`${title} · ${countText(count, "map")}`);
+}
+
+/** @param {number} listed @param {number} here fitted or refused so far @param {number} all */
+export function listedText(listed, here, all) {
+  if (here < all) return `${listed.toLocaleString("en-GB")} so far, of ${countText(all, "map")}`;
+  return listed === all ? countText(all, "map") : `${listed.toLocaleString("en-GB")} of ${countText(all, "map")}`;
+}
+
+/** @param {number} at counted from 1, 0 for none @param {number} all */
+export function stepText(at, all) {
+  const count = all.toLocaleString("en-GB");
+  return at === 0 ? "not in the list" : `${at.toLocaleString("en-GB")} of ${count} in the list`;
+}
+
+/** @param {number} most a fraction, or Infinity */
+export function rvLimitText(most) {
+  return most === Infinity ? "all maps" : `at most ${percentText(most)}`;
+}
+
+/** A number of a map with its unit, as the table has it. @param {MapRow} row @param {SessionState["columns"]} columns @param {string} code */
+export function cellText(row, columns, code) {
+  const at = columns.findIndex((column) => column.code === code);
+  return at < 0 ? "" : `${row.cells[at]} ${symbolOf(columns[at].unit)}`.trim();
+}
+
+/**
+ * Where a map's dipole lies, in few words.
+ * @param {MapRow} row
+ * @param {SessionState["columns"]} columns
+ * @param {string} order what the list is sorted by
+ */
+export function dipolePlaceText(row, columns, order) {
+  /** @param {string} code */
+  const cell = (code) => cellText(row, columns, code);
+  const place = row.nearest_site === null ? row.region.replace("-", ", ") : `under ${row.nearest_site}, ${row.side}`;
+  return `${place}, ${order === "strength" ? cell("strength") : `${cell("depth")} deep`}`;
+}
+
+/**
+ * What there is of a decomposition.
+ * @param {{ subject: string, count: number, failure: Fault | null, counts: { here: number, fitted: number, within: number } | null }} facts
+ */
+export function decompositionText({ subject, count, failure, counts }) {
+  const parts = subject === "" ? [] : [`subject ${shortName(subject)}`];
+  if (counts === null) return [...parts, word(failure === null ? "state.busy" : "state.failed")].join(" · ");
+  const { here, fitted, within } = counts;
+  parts.push(here < count ? `${here.toLocaleString("en-GB")} of ${countText(count, "map")}` : countText(count, "map"));
+  if (here > fitted) parts.push(`${(here - fitted).toLocaleString("en-GB")} not fitted`);
+  if (fitted > 0) {
+    parts.push(`RV at most 15 %: ${within.toLocaleString("en-GB")} (${Math.round((100 * within) / fitted)} %)`);
+  }
+  return typeset(parts.join(" · "));
+}
+
+/** What a button does, and to what. @param {string} action @param {string} name */
+export function actionText(action, name) {
+  return `${action}: ${shortName(name)}`;
+}
+
+/** @param {{ label: string, unit: string }} column */
+export function columnHead({ label, unit }) {
+  return unit === "" ? label : `${label} (${unit})`;
+}
+
+/** @param {number} more @param {number} left */
+export function moreRowsText(more, left) {
+  return `Show ${more.toLocaleString("en-GB")} more of ${left.toLocaleString("en-GB")} that are left`;
+}
+
+/** @param {number} count of names that begin like a formula */
+export function guardText(count) {
+  const names = count === 1 ? "1 name begins" : `${count.toLocaleString("en-GB")} names begin`;
+  return `${names} with =, +, - or @. In copies, CSV and TSV an apostrophe stands before it, so that no spreadsheet takes it for a formula; JSON has it as it is.`;
 }
 
 /** @param {string} subject what the answer is for */
