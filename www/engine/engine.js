@@ -47,9 +47,10 @@ const VAST_BYTES = 2 ** 30;
 
 /**
  * @param {() => WebAssembly.Module} compiled
+ * @param {boolean} [keeps] whether studies keep their tables, to open themselves again after a trap
  * @returns {Engine}
  */
-export function makeEngine(compiled) {
+export function makeEngine(compiled, keeps = true) {
   /** @type {Glue | null} */
   let glue = null;
   /** The instance's memory. @type {WebAssembly.Memory | null} */
@@ -139,7 +140,7 @@ export function makeEngine(compiled) {
       understood: opened.understood(),
       count: opened.count,
     }));
-    kept = keep();
+    kept = keeps ? keep() : {};
 
     return {
       ...facts,

@@ -16,9 +16,13 @@ let workerModule = null;
 const workerEngine = makeEngine(() => {
   if (workerModule === null) throw new TypeError("the worker has no compiled module");
   return workerModule;
-});
+}, false);
 
-/** Requests by the page's keys; a study is opened when first asked about. @type {Map<number, NamedRequest>} */
+/**
+ * Requests by the page's keys; a study is opened when first asked about, and the tables are not kept beside it: the page
+ * ends a worker after a trap.
+ * @type {Map<number, NamedRequest>}
+ */
 const namedRequests = new Map();
 
 /** Of a study under other settings, the key of the one whose tables it has. @type {Map<number, number>} */
@@ -66,6 +70,7 @@ function studyOf(key) {
   const study = lenient ? withoutForeign(opened, plain.settings ?? {}) : opened;
   const latest = latestStudy;
   studies.set(key, study);
+  namedRequests.set(key, { settings: plain.settings, lenient });
   latestStudy = study;
   if (latest !== null && ![...studies.values()].includes(latest)) latest.close();
   return study;

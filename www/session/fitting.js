@@ -31,7 +31,8 @@ export function makeFitting(store, pool, fail) {
   const runs = new Map();
   /** What the progress is of: all that was begun since the workers last had nothing to do. @type {Set<Run>} */
   let batch = new Set();
-  let begun = 0;
+  /** When the first maps of these were told, and how many. */
+  let begun = { at: 0, done: 0 };
   /** Runs with maps that are not shown yet. @type {Set<Run>} */
   const unshown = new Set();
   let timer = 0;
@@ -73,8 +74,10 @@ export function makeFitting(store, pool, fail) {
     const opened = known.reduce((sum, { count }) => sum + (count ?? 0), 0);
     const total = known.length === 0 ? 0 : Math.round((opened / known.length) * batch.size);
     if (done === 0 || [...batch].every(({ over }) => over)) return null;
-    const spent = performance.now() - begun;
-    const left = spent < TELLING_MS ? null : ((spent / done) * (total - done)) / 1000;
+    // Reading tables says nothing about fitting: the time runs from the first maps on.
+    if (begun.done === 0) begun = { at: performance.now(), done };
+    const spent = performance.now() - begun.at;
+    const left = spent < TELLING_MS || done === begun.done ? null : ((spent / (done - begun.done)) * (total - done)) / 1000;
     return { done, total, left, about: known.length < batch.size };
   }
 
@@ -109,7 +112,7 @@ export function makeFitting(store, pool, fail) {
   function begin(run) {
     if ([...batch].every(({ over }) => over)) {
       batch = new Set();
-      begun = performance.now();
+      begun = { at: 0, done: 0 };
     }
     batch.add(run);
   }
