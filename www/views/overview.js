@@ -262,6 +262,8 @@ export function showOverview(session) {
       }
     });
     inner.style.height = `${line * lines.length}px`;
+    // With its two rules; a short list ends with its last line.
+    list.style.maxHeight = `${line * lines.length + 2}px`;
     need("ledger-count", HTMLElement).textContent = listedText(sequence.length, countsOf(held.maps, 1).here, held.count);
     need("ledger-none", HTMLElement).hidden = sequence.length > 0;
     if (anew) {
