@@ -15,7 +15,7 @@ import { withTerms } from "./terms.js";
 /** Common practice: no source. */
 const NEAR_DIPOLAR = 0.15;
 
-/** @typedef {{ element: HTMLElement, update: (one: Decomposition, answer: Answer | null, now: boolean, alone: boolean) => void }} Line */
+/** @typedef {{ element: HTMLElement, update: (one: Decomposition, answer: Answer | null, is: { now: boolean, alone: boolean, stopped: boolean }) => void }} Line */
 
 /**
  * @param {string} id
@@ -93,7 +93,7 @@ function makeLine(session, id) {
 
   return {
     element,
-    update(one, answer, now, alone) {
+    update(one, answer, { now, alone, stopped }) {
       const fault = one.failure;
       const count = answer?.count ?? 0;
       const counts = answer === null ? null : countsOf(answer.maps, NEAR_DIPOLAR);
@@ -101,10 +101,11 @@ function makeLine(session, id) {
       subject.write(one.subject);
       information.write(one.information === null ? "" : enteredText(one.information));
       facts.textContent = decompositionText({ ...one, count, counts });
-      progress.hidden = fault !== null || (counts !== null && counts.here >= count);
+      progress.hidden = stopped || fault !== null || (counts !== null && counts.here >= count);
       if (counts === null) progress.removeAttribute("value");
       else progress.value = counts.here / Math.max(1, count);
-      failure.hidden = fault === null;
+      // That of the one that is shown stands above its answer.
+      failure.hidden = fault === null || now;
       failure.textContent = fault === null ? "" : typeset(`${fault.message} ${fault.hint}`.trim());
       element.toggleAttribute("data-now", now && !alone);
       open.hidden = alone;
@@ -137,7 +138,7 @@ export function showDecompositions(session) {
   });
 
   function show() {
-    const { decompositions, current, answer } = session.read();
+    const { decompositions, current, answer, stopped } = session.read();
     section.toggleAttribute("data-alone", decompositions.length < 2);
     section.hidden = decompositions.length < 2 && (answer === null || answer.count < 2);
     for (const id of lines.keys()) if (!decompositions.some((one) => one.id === id)) lines.delete(id);
@@ -145,7 +146,7 @@ export function showDecompositions(session) {
       const line = lines.get(one.id) ?? makeLine(session, one.id);
       lines.set(one.id, line);
       const now = one.id === current;
-      line.update(one, now ? answer : one.answer, now, decompositions.length < 2);
+      line.update(one, now ? answer : one.answer, { now, alone: decompositions.length < 2, stopped });
     }
     const wanted = [...lines.values()].map(({ element }) => element);
     if (wanted.some((element, at) => list.children[at] !== element) || list.childElementCount > wanted.length) {
@@ -154,4 +155,5 @@ export function showDecompositions(session) {
   }
   session.watch((state) => state.decompositions, show);
   session.watch((state) => state.answer, show);
+  session.watch((state) => state.stopped, show);
 }

@@ -119,11 +119,14 @@ export function showOverview(session) {
     render();
     if (choosing) return;
     choosing = true;
-    for (let last = -1; last !== active; ) {
-      last = active;
-      await session.choose(last);
+    try {
+      for (let last = -1; last !== active; ) {
+        last = active;
+        await session.choose(last);
+      }
+    } finally {
+      choosing = false;
     }
-    choosing = false;
   }
 
   /** @param {number} index */
@@ -450,7 +453,7 @@ export function showOverview(session) {
         [order.value, grouping.value] = moments ? ["number", "none"] : ["rv", "band"];
         take();
       }
-      const elsewhere = !choosing && active !== held.chosen;
+      const elsewhere = (!choosing || anew) && active !== held.chosen;
       if (elsewhere) active = held.chosen;
       number.hidden = held.count < LONG;
       number.max = String(held.maps.length);
