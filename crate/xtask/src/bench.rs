@@ -14,7 +14,10 @@ pub fn bench(workspace: &Workspace) -> Result<()> {
     let node = Tools::find(workspace).node.context("Node 20 or later is needed; INWARD_NODE may name it")?;
     run(workspace.command(node).arg("tests/bench.mjs").env("INWARD_DIST", &workspace.dist))?;
     println!("\nChromium");
-    let mut browser = workspace.cargo();
-    browser.args(["run", "--release", "--locked", "--quiet", "--package=inward-tests", "--example=browser_bench"]);
-    run(browser.env("INWARD_DIST", &workspace.dist))
+    for example in ["--example=browser_bench", "--example=page_bench"] {
+        let mut browser = workspace.cargo();
+        browser.args(["run", "--release", "--locked", "--quiet", "--package=inward-tests", example]);
+        run(browser.env("INWARD_DIST", &workspace.dist))?;
+    }
+    Ok(())
 }
