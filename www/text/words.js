@@ -49,7 +49,6 @@ const WORDS = {
   others: "Further files",
   "others.hint": "Any number of files in any order, told apart by what is in them: maps, electrodes, coordinate system, channels, labels, sphering matrix.",
   "pick.several": "Pick files",
-  "pick.beside": "Add a decomposition",
   "pick.sphering": "Pick the sphering matrix",
   remove: "Remove",
   undo: "Undo",

@@ -114,24 +114,15 @@ function showLoaded(session) {
 function showOthers(session) {
   const list = need("others", HTMLUListElement);
   const files = need("any-files", HTMLInputElement);
-  const beside = need("beside-files", HTMLInputElement);
-  for (const [field, take] of /** @type {const} */ ([[files, session.add], [beside, session.addDecompositions]])) {
-    field.addEventListener("change", async () => {
-      const picked = [...(field.files ?? [])];
-      field.value = "";
-      try {
-        await take.call(session, picked.map(inputOfFile));
-      } catch (error) {
-        session.fail(error);
-      }
-    });
-  }
-  session.watch(
-    (state) => state.inputs.maps === null,
-    (none) => {
-      need("beside", HTMLElement).hidden = none;
-    },
-  );
+  files.addEventListener("change", async () => {
+    const picked = [...(files.files ?? [])];
+    files.value = "";
+    try {
+      await session.add(picked.map(inputOfFile));
+    } catch (error) {
+      session.fail(error);
+    }
+  });
   session.watch(
     (state) => state.inputs.others,
     (others) => {
