@@ -196,6 +196,102 @@ interface Thumbnails {
   limit: number[];
 }
 
+/** Several decompositions in numbers; what is asked about them has defaults: 5, 10, 15 %, seed 1, 4,000 draws. */
+interface SummaryRequest {
+  members: SummaryInput[];
+  at?: number[];
+  seed?: number;
+  draws?: number;
+}
+
+interface SummaryInput {
+  name: string;
+  subject?: string | null;
+  /** Null or not a number for a map that could not be fitted. */
+  rv: (number | null)[];
+  variance?: (number | null)[];
+  /** Labels of those used. */
+  electrodes?: string[];
+  information?: number | null;
+}
+
+interface Summary {
+  /** The thresholds in percent, as text. */
+  labels: string[];
+  members: {
+    name: string;
+    subject: string | null;
+    information: number | null;
+    fitted: number;
+    /** Null where none is fitted. */
+    share: (number | null)[];
+    count: number[];
+    /** Null unless the variance of every fitted component is known. */
+    weighted_share: number[] | null;
+    median_rv: number | null;
+    /** Fitted; count and share at each threshold; weighted share at each; median. Percent without the sign. */
+    cells: string[];
+  }[];
+  /** Decompositions of several subjects under one name; the band, from at least 5 subjects, by drawing subjects anew. */
+  groups: {
+    name: string;
+    /** Places among the members. */
+    members: number[];
+    subjects: number;
+    information: number | null;
+    share: number[];
+    low: (number | null)[];
+    high: (number | null)[];
+    curve: { rv: number[]; share: number[]; low: number[] | null; high: number[] | null };
+    median_rv: number | null;
+    /** Subjects; share and interval at each threshold; median. */
+    cells: string[];
+  }[];
+  /** Of groups, over the subjects that both have. */
+  differences: {
+    a: number;
+    b: number;
+    subjects: number;
+    difference: number[];
+    low: (number | null)[];
+    high: (number | null)[];
+    /** Subjects; difference in percentage points and interval at each threshold. */
+    cells: string[];
+  }[];
+  notes: ReportNote[];
+}
+
+/** Maps of two decompositions one to one, in descending order of |correlation|. */
+interface Matches {
+  /** Number of common electrodes. */
+  electrodes: number;
+  matches: {
+    index_a: number;
+    index_b: number;
+    correlation: number;
+    distance_mm: number | null;
+    /** The two names, |r|, "same" or "opposite" sign, distance in mm. */
+    cells: string[];
+  }[];
+  unmatched_a: number[];
+  unmatched_b: number[];
+}
+
+interface ComparedStudy {
+  name: string;
+  subject?: string | null;
+  information?: number | null;
+  study: Study;
+}
+
+interface ComparisonSettings {
+  at?: number[];
+  seed?: number;
+  draws?: number;
+  /** Places in the list; without it, pairs of one subject, at most 45. */
+  pairs?: [number, number][];
+}
+
 interface ChoiceOption {
   value: ChoiceValue;
   label: string;
@@ -324,6 +420,10 @@ interface GlueStudy {
   rowsWithin(first: number, last: number, milliseconds: number): (MapRow | UnfittedMap)[];
   /** Sizes 8 to 64; null where the electrodes carry no interpolation. */
   thumbnails(indexes: number[], size: number): Thumbnails | null;
+  /** Positions are three canonical millimetres for each map, NaN for one that is not fitted. */
+  matches(other: GlueStudy, own: Float64Array, others: Float64Array): Matches;
+  /** The numerical rank of components, and what is to be said where it is less than their number. */
+  rank(): { rank: number | null; note: ReportNote | null };
   assess(index: number, what: string[]): object;
   sheet(index: number): Sheet;
   /** The same tables under other settings; nothing is read again. */
@@ -344,6 +444,13 @@ interface Glue {
   heads(): CatalogueHead[];
   /** Units that depend on the maps' are named together where none is given. */
   columns(unit?: MapUnit): TableColumn[];
+  summary(request: SummaryRequest): Summary;
+  compare(list: object[], common?: object): object;
+  Comparison: new () => {
+    add(name: string, subject: string | null | undefined, information: number | null | undefined, study: GlueStudy): void;
+    finish(settings?: ComparisonSettings): object;
+    free(): void;
+  };
   choices(): ChoiceOffer[];
   program(): Program;
 }
@@ -379,6 +486,10 @@ interface Study {
   fitWithin(first: number, milliseconds: number): ReportMap[];
   rowsWithin(first: number, last: number, milliseconds: number): (MapRow | UnfittedMap)[];
   thumbnails(indexes: number[], size: number): Thumbnails | null;
+  matches(other: Study, own: Float64Array, others: Float64Array): Matches;
+  rank(): { rank: number | null; note: ReportNote | null };
+  /** Lets a call use the glue's study, of the instance that is current. */
+  lend<T>(job: (study: GlueStudy) => T): T;
   preamble(): InwardReport;
   sheet(index: number): Sheet;
 }
@@ -391,6 +502,11 @@ interface Engine {
   kindOf(content: InwardContent): InputKind;
   roleOf(name: string, content: InwardContent): FileRole;
   columns(unit?: MapUnit): TableColumn[];
+  /** Near-dipolar shares, from numbers alone. */
+  summary(request: SummaryRequest): Summary;
+  compare(list: object[], common?: object): object;
+  /** The same from open studies. */
+  compareStudies(list: ComparedStudy[], settings?: ComparisonSettings): object;
   choices(): ChoiceOffer[];
   program(): Program;
 }

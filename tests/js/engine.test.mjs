@@ -492,3 +492,122 @@ test("rows are the fits as lines of a table, thumbnails their maps", () => {
   }
   assert.equal(thrown(() => study.thumbnails([study.count], 16)).code, "map-index");
 });
+
+const COMPARISON_KEYS = {
+  comparison: "decompositions differences format groups notes pairs program version",
+  decomposition:
+    "electrodes fitted head information inputs maps median_rv name near_dipolar notes rank settings subject understood",
+  nearDipolar: "at count share weighted_share",
+  pair: "a b electrodes error matches unmatched_a unmatched_b",
+  match: "correlation distance_mm index_a index_b",
+  group: "curve high information low median_rv members name share subjects",
+  difference: "a b difference high low subjects",
+};
+const assertCompared = (value, kind) => assert.equal(Object.keys(value).sort().join(" "), COMPARISON_KEYS[kind], kind);
+
+test("a comparison holds the single reports bit for bit", () => {
+  const noisy = table(...[1, 2, 3].map((k) => (i) => Math.sin(k * i * i)));
+  const head = { radius_mm: 90 };
+  const list = [
+    { name: "one", maps, information: 12.5 },
+    { name: "two", maps: noisy, electrodes, head, settings: { exclude: ["Cz"], flip: [1], activationSd: [1, 2, 3] } },
+    { name: "flat", maps: table(() => 1) },
+    { name: "elsewhere", files: [{ name: "m", content: maps }], subject: "s1" },
+  ];
+  const common = { electrodes, settings: { mapUnit: "uV", at: [0.1, 0.2] } };
+  const report = engine.compare(list, common);
+  assertPlain(report, "comparison");
+  assertCompared(report, "comparison");
+  assert.deepEqual([report.format, report.version, report.program], ["inward-comparison", 1, engine.program()]);
+  const requests = [
+    { electrodes, maps, settings: { mapUnit: "uV" } },
+    { electrodes, maps: noisy, settings: { mapUnit: "uV", head, ...list[1].settings } },
+    null,
+    { files: list[3].files, settings: { mapUnit: "uV" } },
+  ];
+  report.decompositions.forEach((decomposition, index) => {
+    assertCompared(decomposition, "decomposition");
+    assertCompared(decomposition.near_dipolar, "nearDipolar");
+    if (requests[index] === null) return;
+    const single = engine.analyse(requests[index]);
+    for (const key of ["inputs", "settings", "head", "electrodes", "maps", "notes", "understood"]) {
+      assert.deepEqual(decomposition[key], single[key], `${key} of ${decomposition.name}`);
+    }
+    const counts = [0.1, 0.2].map((at) => single.maps.filter((map) => map.residual_variance <= at).length);
+    assert.deepEqual(decomposition.near_dipolar.count, counts);
+    assert.deepEqual(decomposition.near_dipolar.share, counts.map((count) => count / single.maps.length));
+  });
+  const [one, two, flat, elsewhere] = report.decompositions;
+  assert.deepEqual([one.information, two.information, elsewhere.subject], [12.5, null, "s1"]);
+  assert.deepEqual([flat.maps[0].error.code, flat.median_rv, flat.fitted, flat.near_dipolar.share], ["map-constant", null, 0, [null, null]]);
+  assert.equal(two.near_dipolar.weighted_share?.length, 2);
+  assert.deepEqual(report.pairs.map(({ a, b }) => [a, b]), [[0, 1], [0, 2], [1, 2]]);
+  report.pairs.forEach((pair) => {
+    assertCompared(pair, "pair");
+    pair.matches.forEach((match) => assertCompared(match, "match"));
+  });
+  assert.equal(report.pairs[0].matches.length, 3);
+  assert.equal(report.pairs[0].electrodes, one.electrodes.length - 1);
+  assert.ok(report.notes.some((note) => note.code === "electrode-sets-differ" && note.severity === "warning"));
+  const { at, ...settings } = common.settings;
+  const studies = list.map(({ name, subject, information, head, settings: own, ...tables }) => {
+    const all = { ...settings, ...own, ...(head && { head }) };
+    const study = engine.open({ ...("files" in tables ? {} : { electrodes }), ...tables, settings: all });
+    return { name, subject, information, study };
+  });
+  assert.deepEqual(engine.compareStudies(studies, { at }), report);
+  const centre = ({ dipole }) => dipole.canonical_mm;
+  const [own, others] = [one, two].map(({ maps }) => new Float64Array(maps.flatMap(centre)));
+  const matched = studies[0].study.matches(studies[1].study, own, others);
+  assert.deepEqual(matched.matches.map(({ cells, ...match }) => match), report.pairs[0].matches);
+  assert.ok(matched.matches.every(({ cells }) => cells.length === 5));
+  assert.deepEqual(studies[0].study.rank(), { rank: one.rank, note: null });
+});
+
+test("groups of subjects have intervals, and wrong comparisons are refused by name", () => {
+  const noisy = (k) => table((i) => Math.sin(k * i * i) + Math.cos(i / 9), (i) => Math.sin(i / k));
+  const list = ["a", "b"].flatMap((name, k) =>
+    [1, 2, 3, 4, 5].map((s) => ({ name, subject: `s${s}`, maps: noisy(s + 7 * k) })),
+  );
+  const report = engine.compare(list, { electrodes, settings: { at: [0.5], seed: 3, draws: 2000, pairs: [[0, 5]] } });
+  assertPlain(report, "comparison");
+  report.groups.forEach((group) => assertCompared(group, "group"));
+  report.differences.forEach((difference) => assertCompared(difference, "difference"));
+  assert.deepEqual([report.groups.length, report.differences.length, report.pairs.length], [2, 1, 1]);
+  assert.ok(report.groups.every(({ low, share, high }) => low[0] <= share[0] && share[0] <= high[0]));
+  const members = report.decompositions.map(({ name, subject, maps, electrodes: all }) => ({
+    name,
+    subject,
+    rv: maps.map((map) => map.residual_variance),
+    electrodes: all.map(({ label }) => label),
+  }));
+  const summary = engine.summary({ members, at: [0.5], seed: 3, draws: 2000 });
+  assertPlain(summary, "summary");
+  assert.deepEqual(summary.groups.map(({ cells, ...group }) => group), report.groups);
+  assert.deepEqual(engine.summary({ members: [{ name: "a", rv: [0.1, NaN, null] }] }).members[0].fitted, 1);
+
+  const refused = (change, common, said) => {
+    const error = thrown(() => engine.compare([{ name: "first", maps }, change], { electrodes, ...common }), said);
+    assert.match(error.message, new RegExp(said));
+    return error;
+  };
+  for (const [change, common, said] of [
+    [{ name: "x", maps, wrong: 1 }, {}, "`wrong` of the decomposition “x”"],
+    [{ maps }, {}, "decomposition 2 has no name"],
+    [{ name: "x", maps, subject: 4 }, {}, "subject.*“x”"],
+    [{ name: "x", maps, information: "much" }, {}, "information.*“x”"],
+    [{ name: "x", maps, settings: { at: [0.1] } }, {}, "“x”.*settings.at"],
+    [{ name: "x", maps, head: { radius: 3 } }, {}, "“x”.*settings.head"],
+    [{ name: "x", maps }, { settings: { wrong: 1 } }, "“first”.*settings.wrong"],
+    [{ name: "x", maps }, { maps }, "`maps`"],
+    [{ name: "x", maps }, { settings: { pairs: [[0, 2]] } }, "pairs"],
+    [{ name: "x", maps }, { settings: { at: "5 %" } }, "`at`"],
+    [{ name: "x", maps }, { settings: { draws: 10 } }, "`draws`"],
+  ]) {
+    assert.equal(refused(change, common, said).code, "settings-unknown");
+  }
+  const empty = refused({ name: "empty", maps: "" }, {}, "In the decomposition “empty”: ");
+  assert.deepEqual([empty.code, empty.decomposition], ["input-empty", "empty"]);
+  assert.equal(thrown(() => engine.compare("x")).code, "settings-unknown");
+  assert.deepEqual(engine.compare([]).decompositions, []);
+});

@@ -3,9 +3,9 @@ use inward_core::electrode::Label;
 use inward_core::head::{LengthUnit, ShellSpec};
 use inward_core::placement::{Wishes, place};
 use inward_core::read::{Encoding, mat};
-use inward_core::report::{ErrorReport, HeadSettings, Note, hint};
+use inward_core::report::{ErrorReport, HeadSettings, Note, Questions, hint};
 use inward_core::understand::{Baseline, ColumnName, ColumnWishes, ColumnsAre, FileWishes, MapsAre, Times};
-use inward_core::{Code, Error, MapReport, Report, Request, Settings, Study, Vec3, analyse};
+use inward_core::{Code, Decomposition, Error, MapReport, Report, Request, Settings, Study, Vec3, analyse, compare};
 use inward_tests::{Draw, Electrodes, electrodes_and_maps, example, sample};
 use std::collections::BTreeSet;
 
@@ -112,6 +112,65 @@ fn zeroed(table: &str, labels: &[&str]) -> String {
         _ => format!("{line}\n"),
     };
     table.lines().map(line).collect()
+}
+
+/// Notes about several decompositions: six subjects under one name and two under another, and many of nobody's, with more
+/// components than electrodes.
+fn of_several() -> Vec<Note> {
+    let (set, mut draw) = (Electrodes::set(19), Draw::from(9));
+    let mut study = |count: usize, settings: Settings| {
+        let maps: Vec<Vec<f64>> = (0..count).map(|_| draw.noise(19)).collect();
+        let table = set.maps(&maps.iter().map(|map| ("ICA", &map[..])).collect::<Vec<_>>());
+        Study::open(&Request { maps: table.as_bytes(), settings, ..Request::default() }).unwrap()
+    };
+    let components = Settings { columns_are: Some(ColumnsAre::Components), ..plain() };
+    let one = |name: &str, subject: Option<String>, study: Study| Decomposition {
+        name: name.into(),
+        subject,
+        information: None,
+        study,
+    };
+    let sd = Settings { activation_sd: vec![Some(2.0)], exclude: vec!["Cz".into()], ..components.clone() };
+    let mut list = vec![one("more", None, study(20, components.clone())), one("partly", None, study(2, sd))];
+    list.extend((0..6).map(|k| one("x", Some(format!("s{k}")), study(1, components.clone()))));
+    list.extend((0..2).map(|k| one("y", Some(format!("s{k}")), study(1, components.clone()))));
+    list.extend((0..9).map(|_| one("n", None, study(1, components.clone()))));
+    let notes = compare(&list, &Questions::default(), None).unwrap().notes;
+    let severities: Vec<(&str, &str)> = notes.iter().map(|note| (note.code.as_str(), note.severity)).collect();
+    assert_eq!(
+        severities,
+        [
+            ("electrode-sets-differ", "warning"),
+            ("components-no-sample", "info"),
+            ("subjects-few", "info"),
+            ("subjects-resampled", "info"),
+            ("variance-incomplete", "info"),
+            ("rank-deficient", "info"),
+            ("pairs-many", "info")
+        ]
+    );
+    for (note, said) in notes.iter().zip([
+        "18 in “partly”",
+        "no sample",
+        "“y” has 2 subjects",
+        "4000 times, seed 1",
+        ": partly.",
+        "20 maps of “more” have rank 19",
+        "57 pairs",
+    ]) {
+        assert!(note.message.contains(said) && note.message.ends_with('.'), "{}", note.message);
+    }
+    notes
+}
+
+/// Two tables whose electrodes have nothing in common.
+fn uncommon() -> ErrorReport {
+    let half = |from: usize| {
+        let set = Electrodes::set(32).only(&(from..from + 12).collect::<Vec<_>>());
+        let noise = Draw::from(2).noise(12);
+        Study::open(&Request { maps: set.maps(&[("m", &noise)]).as_bytes(), ..Request::default() }).unwrap()
+    };
+    (&half(0).matches(&half(12), [&[], &[]], ["a", "b"]).expect_err("an error")).into()
 }
 
 /// Every error that an input can cause, with the input that causes it.
@@ -287,6 +346,7 @@ fn errors() -> Vec<(&'static str, ErrorReport)> {
     ] {
         all.push((code, refused(&sample(name))));
     }
+    all.push(("electrodes-uncommon", uncommon()));
     all.push(("map-index", (&study.fit(6).unwrap_err()).into()));
     all
 }
@@ -541,6 +601,7 @@ fn every_note_is_given_when_it_applies_and_not_otherwise() {
         assert!(!usual.contains(&(code, severity)), "{code}");
         met.insert(code);
     }
+    met.extend(of_several().into_iter().map(|note| note.code.as_str()));
     let known: BTreeSet<&str> =
         Code::ALL.iter().filter(|code| hint(**code).is_empty()).map(|code| code.as_str()).collect();
     assert_eq!(met, known, "every note of the list is brought about");

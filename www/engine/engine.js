@@ -162,6 +162,9 @@ export function makeEngine(compiled, keeps = true) {
         study = null;
       },
       fitWithin: (first, milliseconds) => use((opened) => opened.fitWithin(first, milliseconds)),
+      lend: use,
+      matches: (other, own, others) => use((opened) => other.lend((second) => opened.matches(second, own, others))),
+      rank: () => use((opened) => opened.rank()),
       rowsWithin: (first, last, milliseconds) => use((opened) => opened.rowsWithin(first, last, milliseconds)),
       thumbnails: (indexes, size) => use((opened) => opened.thumbnails(indexes, size)),
       preamble: () => use((opened) => opened.preamble()),
@@ -177,6 +180,20 @@ export function makeEngine(compiled, keeps = true) {
     open: (request) => studyOn(request, () => keepRequest(request)),
     kindOf: (content) => call((current) => current.kindOf(content)),
     roleOf: (name, content) => call((current) => current.roleOf(name, content)),
+    compare: (list, common) => call((current) => current.compare(list, common)),
+    compareStudies: (list, settings) =>
+      call((current) => {
+        const comparison = new current.Comparison();
+        try {
+          for (const { name, subject, information, study } of list) {
+            study.lend((opened) => comparison.add(name, subject, information, opened));
+          }
+          return comparison.finish(settings);
+        } finally {
+          comparison.free();
+        }
+      }),
+    summary: (request) => call((current) => current.summary(request)),
     columns: (unit) => call((current) => current.columns(unit)),
     choices: () => call((current) => current.choices()),
     program: () => call((current) => current.program()),

@@ -1,6 +1,9 @@
 //! The whole way of a table of maps in one call.
 
+mod compare;
 mod tables;
+
+pub use compare::{Decomposition, compare};
 
 use crate::assess::{adjusted_residual_variance, degrees_of_freedom};
 use crate::electrode::{Label, nearest_site};
@@ -10,7 +13,7 @@ use crate::forward::LeadField;
 use crate::head::{Shells, catalogued};
 use crate::map::{MapUnit, average_referenced, hints_at_laplacian};
 use crate::math::{Vec3, mean};
-use crate::placement::{Placed, Placement, Wishes, place};
+use crate::placement::{FEWEST_ELECTRODES, Placed, Placement, Wishes, place};
 use crate::read::{Reading, read};
 use crate::report::{
     Assessment, CENTRE_MM, ChoiceReport, ElectrodeReport, EquivalentDipole, FittedMap, HeadReport, LabelsReport,

@@ -274,6 +274,8 @@ codes! {
     MapIndex = "map-index",
     /// Error: a standard deviation of an activation that is no positive number.
     ActivationSdInvalid = "activation-sd-invalid",
+    /// Error: two decompositions have too few electrodes in common to compare their maps.
+    ElectrodesUncommon = "electrodes-uncommon",
     /// Note: x right, y front, z up was assumed.
     AxesAssumed = "axes-assumed",
     /// Note: parts of a file that are no tables.
@@ -366,6 +368,20 @@ codes! {
     SphereDeviation = "sphere-deviation",
     /// Note: the quick lead field was not accurate enough for this head; the series serves throughout.
     SeriesOnly = "series-only",
+    /// Note: a decomposition has fewer independent maps than maps.
+    RankDeficient = "rank-deficient",
+    /// Note: decompositions were fitted at other electrodes.
+    ElectrodeSetsDiffer = "electrode-sets-differ",
+    /// Note: no interval comes from the components of one recording.
+    ComponentsNoSample = "components-no-sample",
+    /// Note: too few subjects for an interval.
+    SubjectsFew = "subjects-few",
+    /// Note: how intervals were computed.
+    SubjectsResampled = "subjects-resampled",
+    /// Note: some components' variances are not known, so that no share is weighted by them.
+    VarianceIncomplete = "variance-incomplete",
+    /// Note: more pairs of decompositions than are matched unasked.
+    PairsMany = "pairs-many",
 }
 
 impl serde::Serialize for Code {

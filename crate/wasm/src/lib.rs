@@ -2,6 +2,7 @@
 //! JavaScript; everything it does is one call into `inward_core`.
 
 mod clock;
+mod compare;
 mod picture;
 mod wire;
 
@@ -181,6 +182,19 @@ impl Study {
         let indexes = list.iter().map(|index| wire::index(&index, self.0.count())).collect::<Result<Vec<_>, _>>()?;
         let thumbnails = self.0.thumbnails(&indexes, size).map_err(|error| thrown(&error))?;
         Ok(thumbnails.map_or(JsValue::NULL, |thumbnails| picture::small(&thumbnails).into()))
+    }
+
+    /// Its maps matched one to one with those of another study; positions are three numbers for each map, not numbers where
+    /// it is not fitted.
+    pub fn matches(&self, other: &Study, own: &[f64], others: &[f64]) -> Result<JsValue, JsValue> {
+        let [own, others] = [own, others].map(compare::positions);
+        let found = self.0.matches(&other.0, [&own, &others], ["first", "second"]);
+        plain(&found.map_err(|error| thrown(&error))?)
+    }
+
+    /// The numerical rank of its maps, with a note where that is less than their number.
+    pub fn rank(&self) -> Result<JsValue, JsValue> {
+        plain(&self.0.rank(None))
     }
 
     /// The fit of one map with what is named added to it.

@@ -1,6 +1,6 @@
 //! Requests from JavaScript, reports and errors to JavaScript.
 
-use inward_core::report::ErrorReport;
+use inward_core::report::{ErrorReport, within_decomposition};
 use inward_core::{Code, Error, Finding, Place, Settings};
 use js_sys::{Array, Object, Reflect, Uint8Array};
 use serde::Serialize;
@@ -93,7 +93,24 @@ pub(crate) fn misunderstood(key: &str) -> String {
     format!("the value of `{key}` is not one that it can have")
 }
 
-fn keys(object: &JsValue) -> impl Iterator<Item = String> {
+/// The settings as an object of its own; empty where they are left out.
+pub(crate) fn settings_object(given: &JsValue) -> Result<Object, JsValue> {
+    if given.is_undefined() || given.is_null() {
+        return Ok(Object::new());
+    }
+    if !given.is_object() || Array::is_array(given) {
+        return Err(thrown(&Settings::unknown(misunderstood("settings"))));
+    }
+    Ok(Object::assign(&Object::new(), given.unchecked_ref::<Object>()))
+}
+
+/// A property; `undefined` where there is none, and of what has none.
+pub(crate) fn part(of: &JsValue, name: &str) -> JsValue {
+    Reflect::get(of, &name.into()).unwrap_or(JsValue::UNDEFINED)
+}
+
+pub(crate) fn keys(object: &JsValue) -> impl Iterator<Item = String> {
+    let object = if object.is_object() { object.clone() } else { Object::new().into() };
     Object::keys(object.unchecked_ref::<Object>())
         .iter()
         .filter_map(|key| key.as_string())
@@ -178,6 +195,15 @@ pub(crate) fn thrown(error: &Error) -> JsValue {
     set(&thrown, "code", report.code.as_str().into());
     set(&thrown, "hint", report.hint.into());
     thrown.into()
+}
+
+/// An error that was thrown, naming the decomposition it is about.
+pub(crate) fn thrown_within(error: JsValue, decomposition: &str) -> JsValue {
+    if let Some(error) = error.dyn_ref::<js_sys::Error>() {
+        error.set_message(&within_decomposition(decomposition, &String::from(error.message())));
+        set(error.unchecked_ref::<Object>(), "decomposition", decomposition.into());
+    }
+    error
 }
 
 /// Sets a property of an object that was just made here, which cannot fail.

@@ -1,4 +1,8 @@
-//! What a fit is worth: so far its residual variance, adjusted for the degrees of freedom.
+//! What fits are worth: residual variance adjusted for the degrees of freedom, and how many of many are near-dipolar.
+
+mod share;
+
+pub use share::Sample;
 
 /// Degrees of freedom of one dipole's fit to `electrodes` average-referenced values: one goes with the reference, six
 /// with position and moment.

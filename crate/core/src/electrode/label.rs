@@ -1,3 +1,4 @@
+use super::{Kind, Reading};
 use core::fmt;
 
 /// An electrode's label: shown as it was written, compared without regard to case.
@@ -13,6 +14,15 @@ impl Label {
     /// As it was written.
     pub fn as_str(&self) -> &str {
         &self.0
+    }
+
+    /// What electrodes of several tables are compared by: the site that it names, else the name in it.
+    pub fn electrode(&self) -> String {
+        let reading = Reading::of(self);
+        match reading.kind {
+            Kind::Site(site) => site.name.to_lowercase(),
+            _ => reading.key,
+        }
     }
 
     /// What labels are compared by.

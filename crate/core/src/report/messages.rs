@@ -406,6 +406,58 @@ pub fn message(finding: &Finding) -> String {
             value("labels")
         ),
         Code::SeriesOnly => "These shells are computed by the plain series, which is exact but slower.".into(),
+        Code::ElectrodesUncommon => format!(
+            "“{}” and “{}” have {} in common; at least {} are needed to compare maps.",
+            value("a"),
+            value("b"),
+            counted("found", "electrode"),
+            value("fewest")
+        ),
+        Code::RankDeficient => {
+            let of = finding.value("name").map_or_else(String::new, |_| format!(" of “{}”", value("name")));
+            let missing = match (finding.value("maps"), finding.value("rank")) {
+                (Some(Value::Count(maps)), Some(Value::Count(rank))) => maps.saturating_sub(*rank),
+                _ => 0,
+            };
+            let cause = match value("cause").as_str() {
+                "reference" => format!(
+                    "they are average-referenced, and such data have one component less than electrodes ({})",
+                    value("electrodes")
+                ),
+                "electrodes" => format!("only {} electrodes are used", value("electrodes")),
+                "reference-and-more" => "they are average-referenced, which takes one; the rest may be interpolated channels or components taken out".into(),
+                _ => "channels may have been interpolated or components taken out before".into(),
+            };
+            format!(
+                "The {} maps{of} have rank {}, so that {missing} of them repeat what others hold: {cause}.",
+                value("maps"),
+                value("rank")
+            )
+        }
+        Code::ElectrodeSetsDiffer => format!(
+            "The decompositions use different electrodes ({}); not in all of them: {}. Residual variance depends on the number of electrodes and on what they cover, so that shares are not strictly comparable.",
+            value("sets"),
+            value("labels")
+        ),
+        Code::ComponentsNoSample => {
+            "Components of one recording are no sample of anything: no interval is computed from them. Intervals come from at least 5 subjects whose decompositions bear one name.".into()
+        }
+        Code::SubjectsFew => {
+            format!("“{}” has {}: too few for an interval, which needs at least 5.", value("name"), counted("subjects", "subject"))
+        }
+        Code::SubjectsResampled => format!(
+            "Intervals (nominally 95 %, at each threshold by itself) come from drawing the subjects anew {} times, seed {}, by expanded percentiles (Hesterberg 2015).",
+            value("draws"),
+            value("seed")
+        ),
+        Code::VarianceIncomplete => {
+            format!("The variance of some components is not known, so that no share is weighted by it: {}.", value("names"))
+        }
+        Code::PairsMany => format!(
+            "{} pairs of decompositions were not matched, more than {} unasked; name those wanted in settings.pairs.",
+            value("found"),
+            value("most")
+        ),
     }
 }
 
@@ -483,11 +535,19 @@ pub fn hint(code: Code) -> &'static str {
         Code::MapConstant => "Check the column: such a map has no pattern that a source could explain.",
         Code::MapIncomplete => "Fill in the value, or leave the electrode out.",
         Code::MapIndex => "Count maps from 0.",
+        Code::ElectrodesUncommon => {
+            "Take back electrodes that were left out of one of them, or compare decompositions whose electrodes bear the same labels."
+        }
         Code::ActivationSdInvalid => {
             "Give a positive number in the unit of the activation, or leave it open; a list has one for each map, in their order."
         }
         _ => "",
     }
+}
+
+/// A message about one of several decompositions.
+pub fn within_decomposition(name: &str, message: &str) -> String {
+    format!("In the decomposition “{}”: {message}", clipped(name))
 }
 
 /// Whether a note is a warning.
@@ -512,6 +572,7 @@ pub fn is_warning(code: Code) -> bool {
             | Code::OrientationAssumed
             | Code::SpheringAbsent
             | Code::FileUnused
+            | Code::ElectrodeSetsDiffer
     )
 }
 

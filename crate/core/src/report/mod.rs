@@ -1,19 +1,23 @@
 //! Results as they leave the program: plain structures for reports, and the only place where numbers become text.
 
 mod choices;
+mod comparison;
 mod figure;
 mod messages;
 mod number;
 mod row;
 mod settings;
 mod sheet;
+mod summary;
 
 pub use choices::{ChoiceOffer, ChoiceReport, OptionReport, offered};
+pub use comparison::{Comparison, DecompositionReport, Match, NearDipolar, Pair, RankReport};
 pub use figure::{Figure, FigureDipole, FigureShell};
-pub use messages::{hint, is_warning, message};
+pub use messages::{hint, is_warning, message, within_decomposition};
 pub use row::{Column, MapRow, columns};
 pub use settings::{Assessment, HeadSettings, Polarity, Settings};
 pub use sheet::{Alternative, HeadSheet, Row, Scale, Sheet, SheetElectrode, Site};
+pub use summary::{Curve, Difference, GroupSummary, Member, MemberSummary, Questions, Summary};
 
 use crate::finding::{Code, Error, Finding, Place, Value};
 use crate::fit::Stopped;
