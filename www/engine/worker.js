@@ -123,15 +123,16 @@ async function inSlices(key, study, { first, last }, slice) {
 /** How long a worker that has nothing to do is kept warm. */
 const WARMING_MS = 150;
 
-/** Fits an example over and over for a moment, unless there is something to do. @param {EngineRequest} request */
+/** Reads, fits and shows an example over and over for a moment, unless there is something to do. @param {EngineRequest} request */
 async function warmUpOn(request) {
-  const study = workerEngine.open(request);
   const end = performance.now() + WARMING_MS;
-  while (performance.now() < end && tasksAtHand === 1) {
+  for (let turn = 0; performance.now() < end && tasksAtHand === 1; turn++) {
+    const study = workerEngine.open(request);
     study.rowsWithin(0, study.count, SLICE_MS / 4);
+    study.sheet(turn % study.count);
+    study.close();
     await breathe();
   }
-  study.close();
 }
 
 /** @param {Study} study @returns {OpenedStudy} */
