@@ -596,6 +596,7 @@ type WorkerTask =
   | { kind: "sheet"; key: number; index: number }
   | { kind: "thumbnails"; key: number; indexes: number[]; size: number }
   | { kind: "report"; key: number }
+  | { kind: "comparison"; keys: number[]; members: Omit<ComparedStudy, "study">[]; settings: ComparisonSettings }
   | { kind: "close"; key: number };
 
 /** `named`: requests of the studies that the task needs and the worker does not hold. */

@@ -6,7 +6,7 @@
 import { makeEngine } from "./engine.js";
 import { faultOf } from "./fault.js";
 import { harmless } from "../text/figures.js";
-import { reportHead, reportMap, reportTail } from "../export/json.js";
+import { comparisonParts, reportHead, reportMap, reportTail } from "../export/json.js";
 
 const SLICE_MS = 40;
 
@@ -200,6 +200,17 @@ async function answerTask(message) {
       });
       parts.push(reportTail(preamble));
       return self.postMessage({ id, value: new Blob(parts, { type: "application/json" }) });
+    }
+    case "comparison": {
+      const { keys, members, settings } = message;
+      const list = [];
+      for (const [at, key] of keys.entries()) {
+        list.push({ ...members[at], study: studyOf(key) });
+        self.postMessage({ id, progress: { done: at + 1, total: keys.length } });
+        await breathe();
+      }
+      const report = workerEngine.compareStudies(list, settings);
+      return self.postMessage({ id, value: new Blob(comparisonParts(report), { type: "application/json" }) });
     }
     case "close":
       closeStudy(message.key);

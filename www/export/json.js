@@ -29,3 +29,12 @@ export function reportMap(map, first) {
 export function reportTail(preamble) {
   return `\n${["  ]", ...jsonLines(preamble, keysBeside(preamble, "after"))].join(",\n")}\n}\n`;
 }
+
+/** A comparison, one decomposition a line. @param {object} report */
+export function comparisonParts(report) {
+  const parts = Object.entries(report).map(([key, value]) => {
+    const list = Array.isArray(value) ? value.map((one) => `    ${JSON.stringify(one)}`).join(",\n") : null;
+    return `  ${JSON.stringify(key)}: ${list === null ? JSON.stringify(value) : list === "" ? "[]" : `[\n${list}\n  ]`}`;
+  });
+  return ["{\n", ...parts.flatMap((part, at) => (at === 0 ? [part] : [",\n", part])), "\n}\n"];
+}

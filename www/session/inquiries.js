@@ -13,8 +13,8 @@ export function makeInquiries(store, pool, fail, fitting) {
   /** @param {number} id */
   const answerOf = (id) => store.read().decompositions.find((one) => one.id === id)?.answer ?? null;
 
-  /** Asks for something that takes a while. @param {(engine: Pool, take: (step: FitProgress) => void) => Promise<Blob>} job */
-  async function inTime(job) {
+  /** Asks for something that takes a while. @param {(engine: Pool, take: (step: FitProgress) => void) => Promise<Blob>} job @param {() => boolean} [isStill] whether a fault is of interest */
+  async function inTime(job, isStill = () => true) {
     const engine = pool();
     if (engine === null) return null;
     try {
@@ -22,7 +22,7 @@ export function makeInquiries(store, pool, fail, fitting) {
         store.write({ progress: { done, total, left: null, about: false } });
       });
     } catch (fault) {
-      fail(fault);
+      if (isStill()) fail(fault);
       return null;
     } finally {
       store.write({ progress: null });
@@ -70,6 +70,28 @@ export function makeInquiries(store, pool, fail, fitting) {
         if (answerOf(id)?.key === key) fail(fault);
         return null;
       }
+    },
+
+    /**
+     * All decompositions that are answered as one report, with shares, groups and matches.
+     * @param {ComparisonSettings} [settings]
+     * @returns {Promise<Blob | null>}
+     */
+    async comparison(settings = {}) {
+      await fitting.rest();
+      const answered = store.read().decompositions.flatMap(({ name, subject, information, answer }) =>
+        answer === null ? [] : [{ key: answer.key, member: { name, subject: subject || null, information } }],
+      );
+      const keys = answered.map(({ key }) => key);
+      const members = answered.map(({ member }) => member);
+      // Tables that are others meanwhile have been closed under it.
+      const isStill = () => keys.every((key) => store.read().decompositions.some(({ answer }) => answer?.key === key));
+      const report = await inTime(
+        (engine, take) => engine.askAside({ kind: "comparison", keys, members, settings }, take),
+        isStill,
+      );
+      for (const key of keys) pool()?.rest(key);
+      return report;
     },
 
     /** The whole report of the present answer. @returns {Promise<Blob | null>} */

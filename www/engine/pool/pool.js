@@ -43,7 +43,11 @@ export function makePool(module, startWorker, helpers = helperCount()) {
       const surplus = used.slice(0, -KEPT).filter((key) => !schedule.has(key));
       for (const key of surplus) front.release(key);
       used = used.filter((key) => !surplus.includes(key));
-      return front.ask(task, progress);
+      // What was asked of a worker that is lost is asked once more.
+      return front.ask(task, progress).catch((fault) => {
+        if (fault.code !== "worker-lost") throw fault;
+        return front.ask(task, progress);
+      });
     },
 
     name: front.name,
