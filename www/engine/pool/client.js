@@ -38,6 +38,7 @@ export function makeBook() {
 
 /** The studies that a task needs. @param {WorkerTask} task @returns {number[]} */
 export function keysOf(task) {
+  if ("keys" in task) return task.keys;
   return "key" in task && task.kind !== "close" ? [task.key] : [];
 }
 
