@@ -88,6 +88,14 @@ fn maps_are_listed_and_chosen(browser: Browser) {
     page.press(HOME);
     page.press(ENTER);
     assert_eq!(page.value("return document.activeElement.id"), json!("sentence"));
+    // By typing the beginning of a name, or a number.
+    page.focus("#ledger");
+    page.press("tw");
+    page.until("two horns", |page| page.text("#subject").starts_with("two horns"));
+    // After a pause something else is typed.
+    std::thread::sleep(std::time::Duration::from_secs(1));
+    page.press("3");
+    page.until("the third", |page| page.text("#subject").starts_with("swell"));
     // By mouse, and by the steps in the order of the list.
     page.click("#ledger [data-index='5']");
     page.until("the fog", |page| page.text("#subject").starts_with("fog"));

@@ -93,6 +93,7 @@ const WORDS = {
   "ledger.most": "RV at most",
   "ledger.slider": "Most residual variance of the maps listed",
   "ledger.nothing": "No map has so little residual variance.",
+  "ledger.how": "In the list: arrow keys, or type a number or the beginning of a name; Enter goes to the answer.",
   "band.0": "At most 5 %",
   "band.1": "Over 5 to 10 %",
   "band.2": "Over 10 to 15 %",

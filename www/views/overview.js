@@ -26,6 +26,8 @@ const RASTER = 32;
 const BEYOND = 6;
 /** Rasters that are kept. */
 const MOST_PICTURES = 800;
+/** Letters typed within so long belong together. */
+const TYPING_MS = 900;
 /** Tables from here on have a field for a map's number. */
 const LONG = 100;
 /** The scale of residual variance goes from a thousandth to one, in equal steps of its logarithm. */
@@ -158,6 +160,18 @@ export function showOverview(session) {
     return at < 0 ? sequence[0] : sequence[Math.min(sequence.length - 1, Math.max(0, at + by))];
   }
 
+  let typed = "";
+  let typedAt = 0;
+  /** A map by its number or by how its name begins, from the chosen one on. @param {KeyboardEvent} event */
+  function typedFor({ key: letter, timeStamp }) {
+    typed = (timeStamp - typedAt > TYPING_MS ? "" : typed) + letter.toLowerCase();
+    typedAt = timeStamp;
+    const from = Math.max(0, positionOf(active) + (typed.length === 1 ? 1 : 0));
+    const all = [...sequence.slice(from), ...sequence.slice(0, from)];
+    const named = (/** @type {number} */ at) => answer()?.maps[at].name.toLowerCase().startsWith(typed);
+    return all.find((at) => String(at + 1) === typed) ?? all.find(named) ?? active;
+  }
+
   list.addEventListener("keydown", (event) => {
     if (event.ctrlKey || event.metaKey || event.altKey || sequence.length === 0) return;
     const page = Math.max(1, Math.floor(list.clientHeight / line) - 1);
@@ -174,6 +188,7 @@ export function showOverview(session) {
       showAnswerBelow();
       need("sentence", HTMLElement).focus({ preventScroll: true });
     } else if (keys[event.key] !== undefined) goTo(keys[event.key]());
+    else if ([...event.key].length === 1 && (event.key !== " " || typed !== "")) goTo(typedFor(event));
     else return;
     event.preventDefault();
   });
