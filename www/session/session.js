@@ -242,7 +242,9 @@ export function makeSession() {
     const answered = decompositions.find((one) => ids.includes(one.id) && one.answer !== null);
     if (!isStill() || answered === undefined) return;
     await sideBySide.openDecomposition(answered.id);
-    store.write({ phase: "failed", failure, refused: { inputs, settings, id } });
+    const file = inputs.maps?.name ?? "";
+    const named = failure === null || failure.message.includes(file) ? failure : { ...failure, message: `${file}: ${failure.message}` };
+    store.write({ phase: "failed", failure: named, refused: { inputs, settings, id } });
   }
 
   /**
@@ -376,13 +378,15 @@ export function makeSession() {
       const readable = inputs.filter(({ role }) => role !== undefined);
       const spoilt = inputs.filter(({ role }) => role === undefined);
       if (inputs.length > 0) await take(readable.length > 0 ? readable : spoilt);
-      if (store.read().failure !== null) return;
       const faults = [
         ...taken.flatMap((one) => (one.status === "rejected" ? [faultOf(one.reason)] : [])),
         ...(readable.length > 0 ? spoilt : spoilt.slice(1)).flatMap(({ fault }) => fault ?? []),
       ].map(pageFault);
-      if (faults.length === 0) return;
-      const { inputs: kept, settings } = store.read();
+      const { inputs: kept, settings, failure } = store.read();
+      if (failure !== null && readable.length > 0 && faults.length > 0) {
+        store.write({ failure: { ...failure, message: [failure, ...faults].map(({ message }) => message).join(" ") } });
+      }
+      if (failure !== null || faults.length === 0) return;
       store.write({ refused: { inputs: kept, settings } });
       const [first, ...others] = faults;
       fail({ ...first, message: [first, ...others].map(({ message }) => message).join(" ") });
