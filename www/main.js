@@ -5,6 +5,7 @@ import { carriedExamples } from "./intake/examples.js";
 import { takeDropsAndPastes } from "./intake/drop.js";
 import { makeSession } from "./session/session.js";
 import { writeWords } from "./text/words.js";
+import { showAllDipoles } from "./views/all_dipoles.js";
 import { showAnswer } from "./views/answer.js";
 import { showColophon } from "./views/colophon.js";
 import { showDecompositions } from "./views/decompositions.js";
@@ -15,10 +16,12 @@ import { showFailure } from "./views/failure.js";
 import { showHead } from "./views/head.js";
 import { showHeadViews } from "./views/head_views.js";
 import { showIntake } from "./views/intake.js";
+import { showMatching } from "./views/matching.js";
 import { showMaps } from "./views/maps.js";
 import { showNotes } from "./views/notes.js";
 import { showNumbers } from "./views/numbers.js";
 import { showOverview } from "./views/overview.js";
+import { showShares } from "./views/shares.js";
 import { showSign } from "./views/sign.js";
 import { showStatus } from "./views/status.js";
 import { showTable } from "./views/table.js";
@@ -30,6 +33,10 @@ need("unstarted", HTMLElement).remove();
 /** @import { Pool } from "./engine/pool/pool.js" */
 
 const session = makeSession();
+
+const answerStyle = new CSSStyleSheet();
+answerStyle.replaceSync(ANSWER_STYLE);
+document.adoptedStyleSheets = [answerStyle];
 
 addEventListener("error", (event) => {
   // A note of the browser that a size settles in the next frame; nothing has failed.
@@ -54,6 +61,9 @@ for (const show of [
   showNumbers,
   showElectrodes,
   showHead,
+  showShares,
+  showAllDipoles,
+  showMatching,
   showUnderstood,
   showNotes,
   showUndo,

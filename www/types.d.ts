@@ -467,6 +467,9 @@ declare const EXAMPLES: {
 /** The engine itself, packed; put before the module by the build. */
 declare const WASM_PACKED: string;
 
+/** Style sheets of the answer; put before the page's script by the build. */
+declare const ANSWER_STYLE: string;
+
 /** A study as scripts see it; what stands after `close` is for the page's worker. */
 interface Study {
   readonly head: ReportHead;
@@ -595,6 +598,8 @@ type WorkerTask =
   | { kind: "fit"; key: number; first: number; last: number | null; opening: boolean }
   | { kind: "sheet"; key: number; index: number }
   | { kind: "thumbnails"; key: number; indexes: number[]; size: number }
+  | { kind: "summary"; request: SummaryRequest }
+  | { kind: "matches"; keys: number[]; own: Float64Array; others: Float64Array }
   | { kind: "report"; key: number }
   | { kind: "comparison"; keys: number[]; members: Omit<ComparedStudy, "study">[]; settings: ComparisonSettings }
   | { kind: "close"; key: number };
@@ -761,4 +766,6 @@ interface SessionState {
   progress: Progress | null;
   /** Maps still to be fitted were given up. */
   stopped: boolean;
+  /** The residual variance up to which maps count as near-dipolar. */
+  threshold: number;
 }

@@ -10,6 +10,10 @@ const source = (path) => readFileSync(new URL(`../../www/${path}`, import.meta.u
 // As text: the page's files are modules only by how they are used, which not every version of Node guesses.
 const { colourOfShare, colourTable } = await import(`data:text/javascript,${encodeURIComponent(source("draw/scale.js"))}`);
 
+/** What draws decompositions imports the scale; joined, both are one module. */
+const joined = source("draw/scale.js") + source("draw/series.js").replace(/^import .*$/m, "");
+const { rvColour, RV_MOST, seriesColour, seriesDash } = await import(`data:text/javascript,${encodeURIComponent(joined)}`);
+
 const THEMES = ["light", "dark"];
 const GRAIN = 20; // shares on each side
 const SHARES = Array.from({ length: GRAIN + 1 }, (_, k) => k / GRAIN);
@@ -215,6 +219,45 @@ function contrast(a, b) {
   const [high, low] = [a, b].map((colour) => luminance(linear(colour))).sort((x, y) => y - x);
   return (high + 0.05) / (low + 0.05);
 }
+
+const SERIES = 6;
+const bytesOf = (css) => css.match(/\d+/g).map(Number);
+
+/** What is wrong with colours that tell decompositions apart. */
+function confusions(colours, theme, papers) {
+  const found = [];
+  for (const [name, eye] of Object.entries({ "usual sight": (light) => light, ...EYES })) {
+    const seen = colours.map((colour) => oklab(eye(linear(colour))));
+    seen.forEach((a, i) => seen.slice(0, i).forEach((b, j) => {
+      // Twice what the signs of a map keep; the first three, which most figures have, keep more.
+      const least = i < 3 ? 0.13 : 0.08;
+      if (distance(a, b) < least) found.push(`${theme}: ${i} and ${j} are ${distance(a, b).toFixed(3)} apart for ${name}`);
+    }));
+  }
+  for (const paper of papers)
+    colours.forEach((colour, k) => contrast(colour, paper) < 3 && found.push(`${theme}: ${k} hardly stands out`));
+  return found;
+}
+
+test("decompositions are told apart by colour and by dash, and residual variance is even", () => {
+  const papers = palette(source("style/1-paper.css"));
+  for (const theme of THEMES) {
+    const colours = Array.from({ length: SERIES }, (_, k) => bytesOf(seriesColour(k, theme)));
+    const ground = [bytes(papers.get("paper")[theme])];
+    assert.deepEqual(confusions(colours, theme, ground), []);
+    assert.notDeepEqual(confusions([...colours.slice(0, -1), colours[0]], theme, ground), [], "a repeated colour is found");
+    const pairs = Array.from({ length: 42 }, (_, k) => `${seriesColour(k, theme)} ${seriesDash(k)}`);
+    assert.equal(new Set(pairs).size, 42, "no line is like another");
+
+    const way = Array.from({ length: 21 }, (_, k) => oklab(linear(bytesOf(rvColour((RV_MOST * k) / 20, theme)))));
+    const steps = way.slice(1).map((point, k) => distance(point, way[k]));
+    const mean = steps.reduce((a, b) => a + b) / steps.length;
+    assert.ok(steps.every((step) => Math.abs(step - mean) < 1.5 * ROUNDING), `${theme}: steps ${steps}`);
+    const rises = new Set(way.slice(1).map((point, k) => Math.sign(point[0] - way[k][0])));
+    assert.equal(rises.size, 1, "lightness runs one way");
+    assert.equal(rvColour(0.9, theme), rvColour(RV_MOST, theme));
+  }
+});
 
 const PAPERS = ["paper", "raised"];
 const WORDS = ["ink", "quiet", "accent", "warm"];

@@ -19,12 +19,12 @@ function luminanceOf(colour) {
 
 /**
  * Takes ink and font from the style sheet, so that themes and forced colours reach the canvas; paper prints light.
- * @param {HTMLCanvasElement} canvas
+ * @param {HTMLElement} place
  * @param {boolean} printing
  * @returns {Surroundings}
  */
-export function surroundingsOf(canvas, printing) {
-  const style = getComputedStyle(canvas);
+export function surroundingsOf(place, printing) {
+  const style = getComputedStyle(place);
   const font = style.fontFamily;
   if (printing)
     return {

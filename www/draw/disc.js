@@ -156,6 +156,29 @@ export function paintDisc(canvas, content, around) {
 }
 
 /**
+ * The tick in front, and which side is which.
+ * @param {CanvasRenderingContext2D} pen
+ * @param {number} middle
+ * @param {number} centre
+ * @param {number} reach
+ * @param {DiscContent["words"]} words
+ * @param {Surroundings} around
+ */
+function paintSides(pen, middle, centre, reach, words, around) {
+  pen.strokeStyle = around.ink;
+  pen.lineWidth = 1.5;
+  pen.beginPath();
+  pen.moveTo(middle, centre - reach);
+  pen.lineTo(middle, centre - reach - 5);
+  pen.stroke();
+  pen.fillStyle = around.ink;
+  pen.fillText(words.front, middle, centre - reach - 12);
+  pen.fillText(words.left, middle - reach - 10, centre);
+  pen.fillText(words.right, middle + reach + 10, centre);
+  pen.fillText(words.above, middle, centre + reach + 11);
+}
+
+/**
  * Electrodes, the dipole, the labels of the largest and smallest value, and the signs around the disc.
  * @param {CanvasRenderingContext2D} pen
  * @param {number} width
@@ -199,17 +222,7 @@ function paintMarks(pen, width, { middle, centre, unit, edge }, content, around)
   }
 
   const reach = unit * edge;
-  pen.strokeStyle = around.ink;
-  pen.lineWidth = 1.5;
-  pen.beginPath();
-  pen.moveTo(middle, centre - reach);
-  pen.lineTo(middle, centre - reach - 5);
-  pen.stroke();
-  pen.fillStyle = around.ink;
-  pen.fillText(words.front, middle, centre - reach - 12);
-  pen.fillText(words.left, middle - reach - 10, centre);
-  pen.fillText(words.right, middle + reach + 10, centre);
-  pen.fillText(words.above, middle, centre + reach + 11);
+  paintSides(pen, middle, centre, reach, words, around);
   if (content.stretched !== "") {
     pen.textAlign = "right";
     pen.fillText(content.stretched, middle + reach, centre - reach + 2);
@@ -220,4 +233,36 @@ function paintMarks(pen, width, { middle, centre, unit, edge }, content, around)
   if (shown === undefined) return;
   const label = labelled.has(pointed) ? "" : shown.label;
   markPointed(pen, middle + unit * shown.x, centre - unit * shown.y, label, width, around, taken);
+}
+
+/**
+ * One map by itself, without contour lines: its colours, the rim, and the signs of how it is seen.
+ * @param {HTMLCanvasElement} canvas
+ * @param {{ raster: Float32Array, size: number, outline: Float32Array, sign: number, words: DiscContent["words"] }} content
+ * @param {Surroundings} around
+ */
+export function paintMapDisc(canvas, { raster, size, outline, sign, words }, around) {
+  const opened = openCanvas(canvas, around);
+  if (opened === null) return;
+  const { pen, width, height } = opened;
+  const reach = Math.max(1, Math.min(width, height) / 2 - DISC_MARGIN);
+  const [middle, centre] = [width / 2, height / 2];
+  pen.save();
+  pen.translate(middle, centre);
+  pen.scale(reach, reach);
+  tracePoints(pen, outline, true);
+  pen.clip();
+  pen.imageSmoothingQuality = "high";
+  pen.drawImage(imageOfRaster(raster, size, sign, around.theme), -1, -1, 2, 2);
+  pen.restore();
+  pen.strokeStyle = around.ink;
+  pen.globalAlpha = 0.45;
+  pen.beginPath();
+  pen.arc(middle, centre, reach, 0, 2 * Math.PI);
+  pen.stroke();
+  pen.globalAlpha = 1;
+  pen.font = letterFont(around);
+  pen.textAlign = "center";
+  pen.textBaseline = "middle";
+  paintSides(pen, middle, centre, reach, words, around);
 }

@@ -15,7 +15,7 @@ const PEG_LENGTH = 5;
 const LETTER_GAP = 3;
 const HALF_LETTER = 5;
 /** The narrowest canvas that holds head and letters. */
-const LEAST_WIDTH = 200;
+export const LEAST_WIDTH = 200;
 /** Half of the dipole's line over the radius of the scalp, and the least of it in CSS pixels. */
 const HALF_MOMENT = 0.2;
 const LEAST_MOMENT = 17;
@@ -72,7 +72,7 @@ export function seenFrom({ turn, tilt }) {
  * @param {number} width
  * @param {number} height
  */
-function layOutHead(width, height) {
+export function layOutHead(width, height) {
   const radius = Math.max(1, Math.min(width, height) / 2 - HEAD_MARGIN);
   return { middle: width / 2, centre: height / 2, radius };
 }
@@ -169,7 +169,7 @@ export function paintHead(canvas, content, around) {
  * @param {HeadFigure} figure
  * @param {Surroundings} around
  */
-function paintShells(pen, middle, centre, radius, { shells }, around) {
+export function paintShells(pen, middle, centre, radius, { shells }, around) {
   const outermost = Math.max(...shells.map((shell) => shell.radius));
   const innermost = Math.min(...shells.map((shell) => shell.radius));
   pen.strokeStyle = around.ink;
@@ -195,7 +195,7 @@ function paintShells(pen, middle, centre, radius, { shells }, around) {
  * @param {boolean} near
  * @param {Surroundings} around
  */
-function paintCircles(pen, place, near, around) {
+export function paintCircles(pen, place, near, around) {
   pen.strokeStyle = around.ink;
   pen.lineWidth = 1;
   pen.globalAlpha = near ? 0.2 : 0.1;
@@ -228,7 +228,7 @@ function paintCircles(pen, place, near, around) {
  * @param {number} width
  * @param {Surroundings} around
  */
-function paintPeg(pen, place, radius, { side, text }, near, width, around) {
+export function paintPeg(pen, place, radius, { side, text }, near, width, around) {
   /** @param {number} pixels beyond the scalp */
   const beyond = (pixels) => place(PEGS[side].map((part) => part * (1 + pixels / radius)));
   const foot = beyond(0);

@@ -64,7 +64,11 @@ export function oklchOfShare(share, theme, shift = 0) {
  */
 export function colourOfShare(share, theme, shift) {
   const { lightness, chroma, hue } = oklchOfShare(share, theme, shift);
-  const [red, green, blue] = linearOfOklch(lightness, chroma, hue);
+  return encodeLight(linearOfOklch(lightness, chroma, hue));
+}
+
+/** @param {[number, number, number]} light linear @returns {[number, number, number]} sRGB, 0 to 255 */
+export function encodeLight([red, green, blue]) {
   return [encodeChannel(red), encodeChannel(green), encodeChannel(blue)];
 }
 

@@ -187,6 +187,12 @@ async function answerTask(message) {
       const transfer = new Set(small?.measured.map(({ buffer }) => buffer));
       return self.postMessage({ id, value: small }, { transfer: [...transfer] });
     }
+    case "summary":
+      return self.postMessage({ id, value: workerEngine.summary(message.request) });
+    case "matches": {
+      const [first, second] = message.keys.map(studyOf);
+      return self.postMessage({ id, value: first.matches(second, message.own, message.others) });
+    }
     case "report": {
       const study = studyOf(message.key);
       const preamble = study.preamble();

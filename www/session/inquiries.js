@@ -94,6 +94,41 @@ export function makeInquiries(store, pool, fail, fitting) {
       return report;
     },
 
+    /**
+     * Near-dipolar shares of all decompositions that have fitted maps.
+     * @param {number[]} at residual variances
+     * @returns {Promise<Summary | null>}
+     */
+    async summary(at) {
+      const members = store.read().decompositions.flatMap(({ name, subject, information, answer }) => {
+        if (answer === null) return [];
+        const rv = answer.maps.map((map) => ("rv" in map ? map.rv : null));
+        const variance = answer.maps.map((map) => ("rv" in map ? map.variance : null));
+        const electrodes = answer.preamble.electrodes.filter(({ used }) => used).map(({ label }) => label);
+        return [{ name, subject, information, rv, variance, electrodes }];
+      });
+      return pool()?.ask({ kind: "summary", request: { members, at } }) ?? null;
+    },
+
+    /**
+     * Maps of two decompositions one to one; rejects with a fault where they cannot be paired.
+     * @param {number} first
+     * @param {number} second
+     * @returns {Promise<Matches | null>}
+     */
+    async matches(first, second) {
+      const [a, b] = [answerOf(first), answerOf(second)];
+      const engine = pool();
+      if (a === null || b === null || engine === null) return null;
+      /** @param {Answer} answer */
+      const positions = ({ maps, count }) => {
+        const all = new Float64Array(3 * count).fill(Number.NaN);
+        maps.forEach((map, at) => "rv" in map && all.set(map.canonical_mm, 3 * at));
+        return all;
+      };
+      return engine.ask({ kind: "matches", keys: [a.key, b.key], own: positions(a), others: positions(b) });
+    },
+
     /** The whole report of the present answer. @returns {Promise<Blob | null>} */
     async report() {
       const { answer } = store.read();

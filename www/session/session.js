@@ -54,6 +54,7 @@ export function makeSession() {
       pointed: null,
       progress: null,
       stopped: false,
+      threshold: 0.1,
     }),
   );
 
@@ -548,6 +549,11 @@ export function makeSession() {
     /** Marks an electrode everywhere. @param {string | null} label */
     point(label) {
       if (store.read().pointed !== label) store.write({ pointed: label });
+    },
+
+    /** The residual variance up to which maps count as near-dipolar. @param {number} threshold */
+    setThreshold(threshold) {
+      if (store.read().threshold !== threshold) store.write({ threshold });
     },
 
     /** Gives up what the engine is at. */

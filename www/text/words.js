@@ -1,6 +1,6 @@
 /** Every sentence of the page, by code. */
 
-import { NO_BREAK, percentText, shortName, timeText, typeset } from "./figures.js";
+import { enteredText, NO_BREAK, percentText, shortName, timeText, typeset } from "./figures.js";
 
 /** @type {Record<string, string>} */
 const WORDS = {
@@ -252,6 +252,72 @@ const WORDS = {
   notes: "What was assumed and noticed",
   "notes.none": "Nothing beyond the standard head.",
   "note.warning": "Note well",
+
+  decomposition: "Decomposition",
+  subject: "Subject",
+  "figure.svg": "SVG",
+  "figure.png": "PNG",
+  "figure.size": "Size of the PNG",
+
+  shares: "Near-dipolar share",
+  "shares.x": "x, residual variance (RV) in %",
+  "shares.threshold": "Threshold",
+  "shares.usual": "common practice",
+  "shares.other": "or",
+  "shares.scale": "Scale",
+  "shares.log": "logarithmic",
+  "shares.linear": "linear",
+  "shares.most": "up to",
+  "shares.handle": "Threshold of residual variance, percent",
+  "shares.use": "Point at the figure to read it; drag the threshold, or move it with the arrow keys (with Shift by 0.1 %).",
+  "shares.invalid": "A percentage from 0.1 to 100, please.",
+  "shares.table": "Counts and medians",
+  "shares.fitted": "Fitted",
+  "shares.share": "Share, %",
+  "shares.weighted": "Share of their variance, %",
+  "shares.interval": "95 % interval",
+  "shares.median": "Median RV, %",
+  "shares.groups": "Mean shares over subjects, %",
+  "shares.differences": "Differences of the share, paired by subject",
+  "shares.pair": "Decompositions",
+  "shares.subjects": "Subjects",
+  "shares.difference": "Difference, points",
+  information: "Mutual-information reduction and near-dipolar share",
+  "information.y": "mutual-information reduction, as given",
+
+  dipoles: "All dipoles in the head",
+  "dipoles.views": "Head views with dipoles",
+  "dipoles.of": "Dipoles of",
+  "dipoles.one": "the map’s decomposition",
+  "dipoles.all": "all decompositions",
+  "dipoles.above": "Above the threshold",
+  "dipoles.faint": "faint",
+  "dipoles.hidden": "hidden",
+  "dipoles.shown": "like the others",
+  "dipoles.colour": "Colour",
+  "dipoles.by-rv": "residual variance",
+  "dipoles.by-series": "decomposition",
+  "dipoles.rv": "residual variance",
+  "dipoles.legend": "What the colours mean",
+  "dipoles.radii": "Heads of different size: each is drawn in units of its own scalp radius.",
+  "dipoles.use": "Click a dipole, or go from one to the next with the arrow keys.",
+  "dipoles.open": "See its maps",
+
+  match: "Maps that match",
+  "match.hint": "One to one, so that the correlations of the scalp maps, taken without sign, add up to the most. Choose a pair to see both maps, each on its own scale.",
+  "match.first": "First",
+  "match.second": "Second",
+  "match.pair": "Pair",
+  "match.r": "Correlation, |r|",
+  "match.sign": "Sign",
+  "match.distance": "Dipoles apart, mm",
+  "match.rv-a": "RV of the first",
+  "match.rv-b": "RV of the second",
+  "match.same": "Choose two different decompositions.",
+  "match.busy": "Pairing",
+  "match.turned": "sign turned, because r is negative",
+  "match.unfitted": "not fitted",
+  "match.open": "Open this map",
 
   caution: [
     "For research only. Inward is not a medical device and gives no medical advice;",
@@ -611,6 +677,62 @@ export function standpointText(turn, tilt) {
   const { straight, less, more } = QUARTERS[quarter % 4];
   const level = beside === 0 ? straight : `${Math.abs(beside)}° ${beside < 0 ? less : more}`;
   return `seen from ${level}${up === 0 ? "" : `, ${Math.abs(up)}° ${up > 0 ? "above" : "below"}`}`;
+}
+
+/** What a share is of. @param {boolean} components */
+export function noun(components) {
+  return components ? "components" : "maps";
+}
+
+/** @param {string} counted what the share is of */
+export function shareTitle(counted) {
+  return `Share of ${counted} with RV at most x, in %`;
+}
+
+/** @param {string} counted @param {number} rv */
+export function shareBelowText(counted, rv) {
+  return `${counted[0].toUpperCase()}${counted.slice(1)} with ${shareAtText(rv)}`;
+}
+
+/** @param {number} rv */
+export function shareAtText(rv) {
+  return `RV at most ${enteredText(100 * rv)}${NO_BREAK}%`;
+}
+
+/** @param {number} drawn @param {number} all @param {string} limit or empty @param {string} above what those above it are */
+export function dipoleCountText(drawn, all, limit, above) {
+  const beyond = limit === "" ? "" : above === "hidden" ? ` (${limit})` : `; those above ${limit.replace("RV at most ", "RV ")} are faint`;
+  return `${drawn} of ${all} fitted dipoles are drawn${beyond}.`;
+}
+
+/** @param {MapRow} row @param {string} decomposition or empty */
+export function dipoleText({ name, rv, nearest_site: site, side }, decomposition) {
+  const of = decomposition === "" ? "" : ` of ${shortName(decomposition)}`;
+  const place = [site === null ? "" : `under ${site}`, side].filter((part) => part).join(", ");
+  return `${shortName(name)}${of}: RV ${percentText(rv)}, ${place}`;
+}
+
+/** @param {Matches} matches */
+export function matchedText({ electrodes, matches }) {
+  return `${matches.length} pairs, by the ${electrodes} electrodes that both use.`;
+}
+
+/**
+ * Who was left over, and why.
+ * @param {Matches} matches
+ * @param {Decomposition | undefined} a
+ * @param {Decomposition | undefined} b
+ */
+export function unmatchedText({ unmatched_a, unmatched_b }, a, b) {
+  /** @type {[number[], Decomposition | undefined, Decomposition | undefined][]} */
+  const sides = [[unmatched_a, a, b], [unmatched_b, b, a]];
+  return sides.flatMap(([left, own, other]) => {
+    if (left.length === 0) return [];
+    const names = listText(left.map((index) => own?.answer?.maps[index]?.name ?? ""));
+    const fewer = (other?.answer?.count ?? 0) < (own?.answer?.count ?? 0);
+    const why = fewer ? `${shortName(other?.name ?? "")} has fewer maps` : "no map is left that could be theirs";
+    return [`Without a partner in ${shortName(other?.name ?? "")}: ${names} (${why}).`];
+  });
 }
 
 /** Writes the page's own sentences where the template names their codes. @param {ParentNode} root */

@@ -19,7 +19,7 @@ import { keepPainted } from "./surface.js";
  */
 
 /** @type {{ view: HeadView, from: Standpoint, sides: Side[] }[]} */
-const VIEWS = [
+export const HEAD_VIEWS = [
   { view: "above", from: { turn: 0, tilt: 90 }, sides: ["left", "right", "front"] },
   { view: "behind", from: { turn: 0, tilt: 0 }, sides: ["left", "right"] },
   { view: "left", from: { turn: 90, tilt: 0 }, sides: ["front", "back"] },
@@ -49,7 +49,7 @@ export function showHeadViews(session) {
   let standpoint = START;
   let dragging = false;
   /** @type {PaintedView[]} */
-  const views = VIEWS.map(({ view, from, sides }) => ({
+  const views = HEAD_VIEWS.map(({ view, from, sides }) => ({
     view,
     canvas: need(`view-${view}`, HTMLCanvasElement),
     from: () => from,

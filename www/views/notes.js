@@ -8,7 +8,7 @@ import { dropOrphanedNote, withTerms } from "./terms.js";
 /** @import { Session } from "../session/session.js" */
 
 /** @param {ReportNote} note @param {Set<string>} told */
-function noteElement(note, told) {
+export function noteElement(note, told) {
   const element = make("li", "", { class: `note-${note.severity}` });
   if (note.severity === "warning") element.append(make("strong", `${word("note.warning")}: `));
   element.append(...withTerms(typeset(note.message), told));

@@ -36,10 +36,12 @@ pub fn build(workspace: &Workspace) -> Result<Dist> {
     let modules = Modules::read(&www).context("in www")?;
     let carried = packed(&compiled.wasm)?;
     let loader = loader_script(&modules.join("load.js")?)?;
-    let script = page_script(&modules.join("main.js")?, &examples(&workspace.root.join("example_maps"))?)?;
+    let (style, answer_style) = styles(&www.join("style"))?;
+    let script =
+        page_script(&modules.join("main.js")?, &examples(&workspace.root.join("example_maps"))?, &answer_style)?;
     let worker = worker_script(&modules.join("engine/worker.js")?, &compiled.glue)?;
     let parts = Parts {
-        style: &styles(&www.join("style"))?,
+        style: &style,
         loader: &loader,
         script: &script,
         packed: &packed(script.as_bytes())?,
@@ -60,15 +62,23 @@ pub fn build(workspace: &Workspace) -> Result<Dist> {
     Ok(Dist { compiled, carried, page, loader, script, worker, module })
 }
 
-/// All style sheets in the order of their names.
-fn styles(folder: &Path) -> Result<String> {
-    let mut joined = String::new();
+/// Style sheets from this name on are of the answer: they are packed with the script, which is there before it.
+const ANSWER_STYLE: &str = "6";
+
+/// All style sheets in the order of their names: those that the page begins with, and those of the answer.
+fn styles(folder: &Path) -> Result<(String, String)> {
+    let (mut first, mut later) = (String::new(), String::new());
     for path in files(folder)? {
+        let name = path.file_name().unwrap_or_default().to_string_lossy();
         if path.extension().is_some_and(|extension| extension == "css") {
-            joined += &tightened(&read(&path)?);
+            let joined = if *name < *ANSWER_STYLE { &mut first } else { &mut later };
+            *joined += &tightened(&read(&path)?);
         }
     }
-    Ok(joined)
+    if later.contains("@import") || later.contains("url(") {
+        bail!("a style sheet loads a resource");
+    }
+    Ok((first, later))
 }
 
 /// A style sheet without comments and without blanks at the ends of lines and after a property; no string in it holds any.

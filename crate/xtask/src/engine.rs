@@ -14,9 +14,10 @@ pub fn loader_script(joined: &Joined) -> anyhow::Result<String> {
     classic("", joined).context("the script that loads the page's")
 }
 
-/// The page's script, with the invented maps inside.
-pub fn page_script(joined: &Joined, examples: &str) -> anyhow::Result<String> {
-    classic(&format!("const EXAMPLES = {examples};\n"), joined).context("page script")
+/// The page's script, with the invented maps and the answer's style inside.
+pub fn page_script(joined: &Joined, examples: &str, style: &str) -> anyhow::Result<String> {
+    let style = serde_json::to_string(style)?;
+    classic(&format!("const EXAMPLES = {examples};\nconst ANSWER_STYLE = {style};\n"), joined).context("page script")
 }
 
 /// The worker's script.

@@ -1,0 +1,220 @@
+/** Every fitted dipole of a decomposition, or of all, in one head: coloured by residual variance or by decomposition. */
+
+import { openCanvas, surroundingsOf } from "../draw/canvas.js";
+import { dipoleOnHead, paintDipoleLegend, paintDipoles } from "../draw/dipoles.js";
+import { LEAST_WIDTH } from "../draw/head.js";
+import { dipoleCountText, dipoleText, shareAtText, word } from "../text/words.js";
+import { shortName } from "../text/figures.js";
+import { need } from "./element.js";
+import { figureTools, showFigure } from "./figure.js";
+import { HEAD_VIEWS } from "./head_views.js";
+import { fittedDecompositions, seriesOf } from "./several.js";
+import { keepPainted } from "./surface.js";
+
+/** @import { Session } from "../session/session.js" */
+/** @import { ManyDipole, DipolesContent } from "../draw/dipoles.js" */
+
+const DIPOLE_REACH = { mouse: 12, touch: 22 };
+/** CSS pixels of a view and of the legend in a saved figure. */
+const SAVED_VIEW = 250;
+
+/** @typedef {ManyDipole & { id: number, index: number, name: string, row: MapRow }} ListedDipole */
+
+/** @param {Session} session */
+export function showAllDipoles(session) {
+  const section = need("all-dipoles", HTMLDetailsElement);
+  const views = need("dipole-views", HTMLElement);
+  const which = need("dipoles-of", HTMLSelectElement);
+  const above = need("dipoles-above", HTMLSelectElement);
+  const colours = need("dipole-colours", HTMLElement);
+  const legend = need("dipole-legend", HTMLElement);
+  const said = need("dipole-said", HTMLElement);
+  const open = need("dipole-open", HTMLButtonElement);
+  const canvases = HEAD_VIEWS.map(({ view, from, sides }) => ({
+    canvas: need(`dipoles-${view}-view`, HTMLCanvasElement),
+    from,
+    letters: sides.map((side) => ({ side, text: word(`map.${side}`) })),
+    seen: word(`view.${view}`),
+  }));
+  /** @type {ListedDipole[]} */
+  let dipoles = [];
+  /** @type {{ id: number, index: number } | null} */
+  let chosen = null;
+  let byRv = true;
+  let spoken = "";
+
+  const shown = () => {
+    const all = fittedDecompositions(session.read());
+    return which.value === "all" ? all : all.filter(({ decomposition }) => decomposition.id === session.read().current);
+  };
+  const chosenAt = () => dipoles.findIndex(({ id, index }) => id === chosen?.id && index === chosen.index);
+
+  function list() {
+    const { threshold } = session.read();
+    const series = seriesOf(session.read());
+    dipoles = shown().flatMap(({ decomposition, maps }) => {
+      const { answer, id, name } = decomposition;
+      const at = series.get(id) ?? 0;
+      const radius = answer?.preamble.head.radius_mm ?? 1;
+      const axis = answer?.settings.polarity !== "declared";
+      return maps.flatMap((row, index) => {
+        if (!("rv" in row) || (above.value === "hidden" && row.rv > threshold)) return [];
+        const position = row.canonical_mm.map((part) => part / radius);
+        const faint = above.value === "faint" && row.rv > threshold;
+        return [{ position, direction: row.canonical_direction, axis, rv: row.rv, at, faint, id, index, name, row }];
+      });
+    });
+  }
+
+  /** Shells of the head that is shown; those of others may differ. */
+  function shells() {
+    const head = shown()[0]?.decomposition.answer?.preamble.head;
+    return (head?.shells ?? []).map(({ outer_radius_mm: radius }) => ({ radius: radius / (head?.radius_mm ?? 1) }));
+  }
+
+  /** @param {Omit<(typeof canvases)[number], "canvas">} view @param {boolean} marked @returns {DipolesContent} */
+  const content = ({ from, letters, seen }, marked) => ({
+    dipoles,
+    chosen: marked ? chosenAt() : -1,
+    byRv,
+    shells: shells(),
+    from,
+    letters,
+    seen,
+  });
+  function legendContent() {
+    const series = seriesOf(session.read());
+    const names = new Map(shown().map(({ decomposition: { id, name } }) => [series.get(id) ?? 0, shortName(name)]));
+    return {
+      byRv,
+      threshold: session.read().threshold,
+      names: [...names].map(([at, name]) => ({ name, at })),
+      words: word("dipoles.rv"),
+    };
+  }
+
+  const paint = keepPainted(section, (printing) => {
+    for (const view of canvases) {
+      const around = surroundingsOf(view.canvas, printing);
+      const opened = openCanvas(view.canvas, around, LEAST_WIDTH);
+      if (opened !== null) paintDipoles(opened.pen, opened.width, opened.height, content(view, !printing), around);
+    }
+    showFigure(legend, word("dipoles.legend"), printing, (width, around, penAt) =>
+      paintDipoleLegend(penAt(0, 0), width, legendContent(), around),
+    );
+  });
+
+  /** Says which one is chosen, and offers the way to it. */
+  function tell() {
+    const at = chosenAt();
+    open.hidden = at < 0;
+    const text = at < 0 ? word("dipoles.use") : dipoleText(dipoles[at].row, which.value === "all" ? dipoles[at].name : "");
+    if (text !== spoken) said.textContent = text;
+    spoken = text;
+  }
+
+  /** @param {number} at @param {boolean} opening of a decomposition that is not open */
+  async function choose(at, opening) {
+    const { id, index } = dipoles[at];
+    chosen = { id, index };
+    tell();
+    paint();
+    if (id !== session.read().current) {
+      if (!opening) return;
+      await session.openDecomposition(id);
+    }
+    if (session.read().answer?.chosen !== index) await session.choose(index);
+  }
+
+  views.addEventListener("keydown", (event) => {
+    if (event.ctrlKey || event.metaKey || event.altKey || dipoles.length === 0) return;
+    const at = chosenAt();
+    const last = dipoles.length - 1;
+    /** @type {Record<string, number>} */
+    const moves = {
+      ArrowRight: Math.min(last, at + 1),
+      ArrowDown: Math.min(last, at + 1),
+      ArrowLeft: Math.max(0, at - 1),
+      ArrowUp: Math.max(0, at - 1),
+      Home: 0,
+      End: last,
+    };
+    if (moves[event.key] !== undefined) choose(moves[event.key], false);
+    else if (event.key === "Enter" && at >= 0) choose(at, true);
+    else return;
+    event.preventDefault();
+  });
+  for (const { canvas, from } of canvases) {
+    /** @param {PointerEvent} event */
+    const under = (event) => {
+      const box = canvas.getBoundingClientRect();
+      const reach = event.pointerType === "touch" ? DIPOLE_REACH.touch : DIPOLE_REACH.mouse;
+      return dipoleOnHead(canvas, { dipoles, from }, event.clientX - box.left, event.clientY - box.top, reach);
+    };
+    canvas.addEventListener("pointermove", (event) => {
+      canvas.style.cursor = under(event) < 0 ? "" : "pointer";
+    });
+    canvas.addEventListener("click", (event) => {
+      if (!(event instanceof MouseEvent)) return;
+      const at = under(/** @type {PointerEvent} */ (event));
+      if (at >= 0) choose(at, true);
+    });
+  }
+  open.addEventListener("click", async () => {
+    const at = chosenAt();
+    if (at < 0) return;
+    await choose(at, true);
+    need("sentence", HTMLElement).focus();
+  });
+
+  function update() {
+    const fitted = fittedDecompositions(session.read());
+    const all = fitted.reduce((sum, { maps }) => sum + maps.filter((map) => "rv" in map).length, 0);
+    section.hidden = all < 2;
+    need("dipoles-which", HTMLElement).hidden = fitted.length < 2;
+    if (fitted.length < 2) which.value = "one";
+    colours.hidden = which.value !== "all";
+    if (colours.hidden) byRv = true;
+    else byRv = colours.querySelector("input:checked")?.getAttribute("value") === "rv";
+    if (section.hidden || !section.open) return;
+    list();
+    const radii = new Set(shown().map(({ decomposition }) => decomposition.answer?.preamble.head.radius_mm));
+    need("dipoles-count", HTMLElement).textContent = [
+      dipoleCountText(dipoles.length, all, above.value === "shown" ? "" : shareAtText(session.read().threshold), above.value),
+      radii.size > 1 ? word("dipoles.radii") : "",
+    ].filter((text) => text).join(" ");
+    for (const { canvas, seen } of canvases) canvas.setAttribute("aria-label", `${word("dipoles")}, ${seen}`);
+    tell();
+    paint();
+  }
+  section.addEventListener("toggle", update);
+  for (const control of [which, above, colours]) control.addEventListener("change", update);
+
+  figureTools(session, need("dipole-tools", HTMLElement), () => ({
+    name: "inward-dipoles",
+    title: word("dipoles"),
+    description: need("dipoles-count", HTMLElement).textContent ?? "",
+    width: 3 * SAVED_VIEW,
+    paint: (width, around, penAt) => {
+      canvases.forEach((view, k) => {
+        paintDipoles(penAt(k * SAVED_VIEW, 0), SAVED_VIEW, SAVED_VIEW, content(view, false), around);
+      });
+      return SAVED_VIEW + 12 + paintDipoleLegend(penAt(0, SAVED_VIEW + 12), width, legendContent(), around);
+    },
+  }));
+
+  session.watch(
+    ({ answer }) => answer?.chosen,
+    (index) => {
+      if (index !== undefined) chosen = { id: session.read().current, index };
+      update();
+    },
+  );
+  for (const pick of /** @type {((state: SessionState) => unknown)[]} */ ([
+    (state) => state.decompositions,
+    (state) => state.threshold,
+    (state) => state.current,
+  ])) {
+    session.watch(pick, update);
+  }
+}

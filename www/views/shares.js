@@ -1,0 +1,382 @@
+/**
+ * The near-dipolar share: how many maps of each decomposition have a residual variance of at most x, as curves with a
+ * threshold to move and a table; and mutual-information reductions, where they are given, against it.
+ */
+
+import { layOutShares, paintInformation, paintShares, shareAt, sharesHeight } from "../draw/curves.js";
+import { surroundingsOf } from "../draw/canvas.js";
+import { SvgPen, svgElement } from "../draw/pen.js";
+import { seriesColour, seriesDash } from "../draw/series.js";
+import { copyText } from "../export/out.js";
+import { cellsText } from "../export/table.js";
+import { enteredNumber, enteredText, percentText, shortName, typeset } from "../text/figures.js";
+import { shareAtText, shareBelowText, shareTitle, word } from "../text/words.js";
+import { confirmOn } from "./confirm.js";
+import { make, need } from "./element.js";
+import { figureTools, showFigure } from "./figure.js";
+import { noteElement } from "./notes.js";
+import { fittedDecompositions, nounOf, seriesOf } from "./several.js";
+import { keepPainted } from "./surface.js";
+
+/** @import { Session } from "../session/session.js" */
+/** @import { ShareLine, SharesContent } from "../draw/curves.js" */
+
+/** Shares of common practice, and how far the arrow keys move the threshold. */
+const COARSE = 0.01;
+const FINE = 0.001;
+const PAGE = 0.05;
+const LEAST = 0.001;
+/** CSS pixels across a figure that is saved. */
+const SAVED = { shares: 720, information: 480 };
+
+/** @param {Session} session */
+export function showShares(session) {
+  const section = need("shares", HTMLDetailsElement);
+  const place = need("share-figure", HTMLElement);
+  const handle = need("threshold-handle", HTMLElement);
+  const field = need("threshold", HTMLInputElement);
+  const most = need("share-most", HTMLSelectElement);
+  const readout = need("share-readout", HTMLElement);
+  const copy = need("copy-shares", HTMLButtonElement);
+  const about = need("information-figure", HTMLElement);
+  let logarithmic = true;
+  /** @type {Summary | null} */
+  let summary = null;
+  /** @type {(ShareLine & { information: number | null })[]} */
+  let lines = [];
+  /** @type {number | null} */
+  let pointed = null;
+  /** Whether the engine is asked, and whether what it is asked about has changed since. */
+  let asking = false;
+  let stale = false;
+  /** Whether decompositions were of several subjects when the tables were last written. @type {boolean | null} */
+  let grouped = null;
+  let offered = false;
+
+  /** @returns {SharesContent} */
+  const content = () => ({
+    lines,
+    logarithmic,
+    most: Number(most.value),
+    threshold: session.read().threshold,
+    pointed,
+    words: { x: word("shares.x"), y: shareTitle(nounOf(session.read())) },
+  });
+
+  /** Each line at a residual variance, in words. @param {number} rv */
+  const valuesAt = (rv) => lines.map((line) => `${line.name} ${percentText(shareAt(line, rv))}`).join(", ");
+
+  function placeHandle() {
+    const { threshold } = session.read();
+    const shown = content();
+    const plot = layOutShares(place.clientWidth, sharesHeight(place.clientWidth, lines.length), shown, surroundingsOf(place, false));
+    handle.hidden = threshold > shown.most;
+    Object.assign(handle.style, {
+      left: `${plot.x(threshold)}px`,
+      top: `${plot.top - 6}px`,
+      height: `${plot.bottom - plot.top + 12}px`,
+    });
+    handle.setAttribute("aria-valuemax", enteredText(100 * shown.most));
+    handle.setAttribute("aria-valuenow", enteredText(100 * threshold));
+    handle.setAttribute("aria-valuetext", `${percentText(threshold)}: ${valuesAt(threshold)}`);
+  }
+
+  const paint = keepPainted(section, (printing) => {
+    if (lines.length === 0) return;
+    const shown = content();
+    showFigure(place, shareTitle(nounOf(session.read())), printing, (width, around, penAt) => {
+      const height = sharesHeight(width, lines.length);
+      paintShares(penAt(0, 0), width, height, printing ? { ...shown, pointed: null } : shown, around);
+      return height;
+    });
+    if (!printing) placeHandle();
+    const points = informed();
+    need("information", HTMLElement).hidden = points.length < 2;
+    if (points.length < 2) return;
+    showFigure(about, word("information"), printing, (width, around, penAt) => {
+      const wide = Math.min(width, SAVED.information);
+      paintInformation(penAt(0, 0), wide, 0.75 * wide, informationContent(points), around);
+      return 0.75 * wide;
+    });
+  });
+
+  /** Decompositions, or the means of those of one name, whose mutual-information reduction is given. */
+  function informed() {
+    const { threshold } = session.read();
+    return lines.flatMap((line) => {
+      const { name, at, information } = line;
+      return information === null ? [] : [{ name, at, information, share: shareAt(line, threshold) }];
+    });
+  }
+
+  /** @param {ReturnType<typeof informed>} points */
+  const informationContent = (points) => ({
+    points,
+    words: { x: `${shareBelowText(nounOf(session.read()), session.read().threshold)}, in %`, y: word("information.y") },
+  });
+
+  /** A piece of a line as it is drawn. @param {number} at */
+  function swatch(at) {
+    const { theme } = surroundingsOf(place, false);
+    const picture = svgElement("svg", { width: 26, height: 10, "aria-hidden": "true", class: "swatch" });
+    const pen = new SvgPen(picture);
+    pen.strokeStyle = seriesColour(at, theme);
+    pen.lineWidth = 2;
+    pen.setLineDash(seriesDash(at));
+    pen.moveTo(0, 5);
+    pen.lineTo(26, 5);
+    pen.stroke();
+    return picture;
+  }
+
+  /** @param {Summary["members"][number]} member */
+  const decompositionOf = (member) =>
+    session.read().decompositions.find(({ name, subject }) => name === member.name && subject === (member.subject ?? ""));
+
+  /** A line for each group of one name and several subjects, and for each decomposition that is in none. @param {Summary} held */
+  function linesOf({ members, groups }) {
+    const series = seriesOf(session.read());
+    return members.flatMap((member, index) => {
+      const decomposition = decompositionOf(member);
+      if (decomposition === undefined || member.fitted === 0) return [];
+      const at = series.get(decomposition.id) ?? 0;
+      const group = groups.find((one) => one.members.includes(index));
+      if (group !== undefined) {
+        const first = group.members.find((one) => members[one].fitted > 0) === index;
+        return first ? [{ name: shortName(group.name), at, ...group.curve, steps: false, information: group.information }] : [];
+      }
+      const rv = (decomposition.answer?.maps ?? []).flatMap((map) => ("rv" in map ? [map.rv] : [])).sort((a, b) => a - b);
+      const share = rv.map((_, k) => (k + 1) / rv.length);
+      const { subject, information } = decomposition;
+      const name = [member.name, subject].filter((part) => part).map(shortName).join(", ");
+      return [{ name, at, rv, share, low: null, high: null, steps: true, information }];
+    });
+  }
+
+  /** @typedef {{ id: string, heading: string[], rows: string[][], at: (number | undefined)[] }} ShareTable */
+
+  /**
+   * The tables as text, the first cell of a row naming it; `at` gives each row's line. A column without anything in it
+   * is left out.
+   * @param {Summary} held
+   * @returns {ShareTable[]}
+   */
+  function tables({ members, groups, differences }) {
+    const limit = shareAtText(session.read().threshold);
+    const series = seriesOf(session.read());
+    const at = members.map((member) => series.get(decompositionOf(member)?.id ?? 0));
+    /** @type {ShareTable[]} */
+    const all = [
+      {
+        id: "group-table",
+        heading: ["decomposition", "shares.subjects", limit, "shares.interval", "shares.median"],
+        rows: groups.map(({ name, cells }) => [shortName(name), ...cells]),
+        at: groups.map((group) => at[group.members[0]]),
+      },
+      {
+        id: "share-table",
+        heading: ["decomposition", "subject", "shares.fitted", limit, "shares.share", "shares.weighted", "shares.median"],
+        rows: members.map(({ name, subject, cells }) => [shortName(name), shortName(subject ?? ""), ...cells]),
+        at,
+      },
+      {
+        id: "difference-table",
+        heading: ["shares.pair", "shares.subjects", "shares.difference", "shares.interval"],
+        rows: differences.map(({ a, b, cells }) => [`${shortName(groups[a].name)} \u2212 ${shortName(groups[b].name)}`, ...cells]),
+        at: [],
+      },
+    ];
+    return all.map((table) => {
+      const kept = table.heading.map((_, k) => k === 0 || table.rows.some((row) => row[k] !== ""));
+      /** @param {string[]} cells */
+      const keep = (cells) => cells.filter((_, k) => kept[k]);
+      const heading = table.heading.map((text) => (text === limit ? text : word(text)));
+      return { ...table, heading: keep(heading), rows: table.rows.map(keep) };
+    });
+  }
+
+  function writeTables() {
+    if (summary === null) return;
+    const several = summary.groups.length > 0;
+    for (const { id, heading, rows, at } of tables(summary)) {
+      const table = need(id, HTMLTableElement);
+      table.tHead?.rows[0].replaceChildren(...heading.map((text) => make("th", typeset(text), { scope: "col" })));
+      table.tBodies[0].replaceChildren(
+        ...rows.map(([name, ...cells], k) => {
+          const row = make("tr", "");
+          const first = make("th", "", { scope: "row" });
+          const line = at[k];
+          if (line !== undefined) first.append(swatch(line));
+          first.append(name);
+          row.append(first, ...cells.map((cell) => make("td", typeset(cell))));
+          return row;
+        }),
+      );
+    }
+    need("share-groups", HTMLElement).hidden = !several;
+    need("share-differences", HTMLElement).hidden = summary.differences.length === 0;
+    if (several !== grouped) need("share-members", HTMLDetailsElement).open = !several;
+    grouped = several;
+    need("share-notes", HTMLElement).replaceChildren(...summary.notes.map((note) => noteElement(note, new Set())));
+  }
+
+  /** Asks the engine; what has changed meanwhile is asked about once more. */
+  async function ask() {
+    if (section.hidden || !section.open) return;
+    if (asking) {
+      stale = true;
+      return;
+    }
+    asking = true;
+    do {
+      stale = false;
+      const { threshold } = session.read();
+      try {
+        summary = await session.summary([threshold]);
+      } catch (fault) {
+        // A later change asks again.
+        summary = null;
+        if (!stale) session.fail(fault);
+      }
+    } while (stale);
+    asking = false;
+    lines = summary === null ? [] : linesOf(summary);
+    writeTables();
+    paint();
+  }
+
+  /** @param {number} rv */
+  function move(rv) {
+    if (Number.isFinite(rv)) session.setThreshold(Math.min(1, Math.max(LEAST, rv)));
+  }
+
+  /** @param {PointerEvent} event */
+  function under(event) {
+    const plot = layOutShares(place.clientWidth, sharesHeight(place.clientWidth, lines.length), content(), surroundingsOf(place, false));
+    return plot.rv(event.clientX - place.getBoundingClientRect().left);
+  }
+  /** Dragged, it keeps to tenths of a percent. @param {number} rv */
+  const even = (rv) => Math.round(rv / FINE) * FINE;
+
+  handle.addEventListener("keydown", (event) => {
+    const { threshold } = session.read();
+    const step = event.shiftKey ? FINE : COARSE;
+    /** @type {Record<string, number>} */
+    const moves = {
+      ArrowRight: even(threshold + step),
+      ArrowUp: even(threshold + step),
+      ArrowLeft: even(threshold - step),
+      ArrowDown: even(threshold - step),
+      PageUp: even(threshold + PAGE),
+      PageDown: even(threshold - PAGE),
+      Home: COARSE,
+      End: Number(most.value),
+    };
+    if (moves[event.key] === undefined || event.ctrlKey || event.metaKey || event.altKey) return;
+    event.preventDefault();
+    move(Math.min(moves[event.key], Number(most.value)));
+  });
+  let dragging = false;
+  place.addEventListener("pointerdown", (event) => {
+    if (!event.isPrimary || event.button !== 0) return;
+    // A finger scrolls the page, unless it takes the handle.
+    if (event.pointerType === "touch" && event.target !== handle) return;
+    dragging = true;
+    place.setPointerCapture(event.pointerId);
+    move(even(under(event)));
+    handle.focus({ preventScroll: true });
+    event.preventDefault();
+  });
+  place.addEventListener("lostpointercapture", () => {
+    dragging = false;
+  });
+  place.addEventListener("pointermove", (event) => {
+    if (dragging) return move(even(under(event)));
+    if (event.pointerType === "touch") return;
+    point(under(event));
+  });
+  place.addEventListener("pointerleave", () => point(null));
+
+  /** @param {number | null} rv */
+  function point(rv) {
+    pointed = rv;
+    readout.textContent = rv === null ? word("shares.use") : `${shareAtText(rv)}: ${valuesAt(rv)}`;
+    paint();
+  }
+  point(null);
+
+  field.addEventListener("change", () => {
+    const entered = enteredNumber(field.value.replace("%", "")) / 100;
+    const good = entered >= LEAST && entered <= 1;
+    field.setAttribute("aria-invalid", String(!good));
+    need("threshold-fault", HTMLElement).textContent = good ? "" : word("shares.invalid");
+    if (good) move(entered);
+  });
+  const usual = need("usual-thresholds", HTMLElement);
+  usual.addEventListener("change", (event) => {
+    if (event.target instanceof HTMLInputElement) move(Number(event.target.value));
+  });
+  need("share-scale", HTMLElement).addEventListener("change", (event) => {
+    if (event.target instanceof HTMLInputElement) logarithmic = event.target.value === "log";
+    paint();
+  });
+  most.addEventListener("change", paint);
+  copy.addEventListener("click", async () => {
+    if (summary === null) return;
+    const shown = tables(summary).filter(({ rows }) => rows.length > 0);
+    const texts = shown.map(({ heading, rows }) => cellsText([heading, ...rows]));
+    confirmOn(copy, await copyText(texts.join("\n\n")));
+  });
+
+  section.addEventListener("toggle", ask);
+
+  const title = () => shareTitle(nounOf(session.read()));
+  figureTools(session, need("share-tools", HTMLElement), () => ({
+    name: "inward-near-dipolar-share",
+    title: title(),
+    description: `${shareAtText(session.read().threshold)}: ${valuesAt(session.read().threshold)}.`,
+    width: SAVED.shares,
+    paint: (width, around, penAt) => {
+      const height = sharesHeight(width, lines.length);
+      paintShares(penAt(0, 0), width, height, { ...content(), pointed: null }, around);
+      return height;
+    },
+  }));
+  figureTools(session, need("information-tools", HTMLElement), () => ({
+    name: "inward-information",
+    title: word("information"),
+    description: informed().map(({ name, share, information }) => `${name}: ${percentText(share)}, ${enteredText(information)}`).join("; "),
+    width: SAVED.information,
+    paint: (width, around, penAt) => {
+      paintInformation(penAt(0, 0), width, 0.75 * width, informationContent(informed()), around);
+      return 0.75 * width;
+    },
+  }));
+
+  session.watch(
+    (state) => state.threshold,
+    (threshold) => {
+      if (document.activeElement !== field) field.value = enteredText(100 * threshold);
+      field.setAttribute("aria-invalid", "false");
+      need("threshold-fault", HTMLElement).textContent = "";
+      for (const input of usual.querySelectorAll("input")) input.checked = Math.abs(Number(input.value) - threshold) < 1e-9;
+      ask();
+      paint();
+    },
+  );
+  session.watch(
+    // Whatever the shares hang on; another map in view does not count.
+    ({ decompositions }) =>
+      decompositions
+        .map(({ id, name, subject, information, answer }) => [id, name, subject, information, answer?.key, answer?.fitted].join("\t"))
+        .join("\n"),
+    () => {
+      const fitted = fittedDecompositions(session.read());
+      const count = fitted.reduce((sum, { maps }) => sum + maps.filter((map) => "rv" in map).length, 0);
+      section.hidden = count < 2;
+      // Of several, the comparison is what is looked for.
+      if (fitted.length > 1 && !offered) section.open = offered = true;
+      ask();
+    },
+  );
+}
