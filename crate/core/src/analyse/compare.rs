@@ -184,25 +184,21 @@ impl Study {
         let gains: Vec<f64> =
             own.iter().flat_map(|(_, a)| others.iter().map(move |(_, b)| correlation(a, b).abs())).collect();
         let partners = assignment(own.len(), others.len(), &gains);
-        let mut matches: Vec<Match> = own
-            .iter()
-            .zip(partners)
-            .filter_map(|((index_a, a), partner)| {
-                let (index_b, b) = others.get(partner?)?;
-                let position = |which: usize, index: usize| positions[which].get(index).copied().flatten();
-                let distance = position(0, *index_a).zip(position(1, *index_b)).map(|(a, b)| (a - b).norm());
-                let found = Match {
-                    index_a: *index_a,
-                    index_b: *index_b,
-                    correlation: correlation(a, b),
-                    distance_mm: distance,
-                    cells: Vec::new(),
-                };
-                let name = |study: &Self, index: usize| study.tables.understood.maps.names[index].clone();
-                Some(found.told(&name(self, *index_a), &name(other, *index_b)))
-            })
-            .collect();
-        matches.sort_by(|a, b| b.correlation.abs().total_cmp(&a.correlation.abs()).then(a.index_a.cmp(&b.index_a)));
+        let position = |which: usize, index: usize| positions[which].get(index).copied().flatten();
+        let name = |study: &Self, index: usize| study.tables.understood.maps.names[index].clone();
+        let mut matches: Vec<Match> = Vec::with_capacity(own.len());
+        for ((index_a, a), partner) in own.iter().zip(partners) {
+            let Some((index_b, b)) = partner.and_then(|partner| others.get(partner)) else { continue };
+            let found = Match {
+                index_a: *index_a,
+                index_b: *index_b,
+                correlation: correlation(a, b),
+                distance_mm: position(0, *index_a).zip(position(1, *index_b)).map(|(a, b)| (a - b).norm()),
+                cells: Vec::new(),
+            };
+            let place = matches.partition_point(|one| one.correlation.abs() >= found.correlation.abs());
+            matches.insert(place, found.told(&name(self, *index_a), &name(other, *index_b)));
+        }
         let left = |study: &Self, taken: &dyn Fn(&Match) -> usize| {
             let mut free = vec![true; study.count()];
             matches.iter().for_each(|one| free[taken(one)] = false);

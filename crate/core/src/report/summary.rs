@@ -185,8 +185,8 @@ impl Summary {
             .map(|group| group.summary(members, &samples, at, resampler(group.subjects.len())))
             .collect();
         let mut differences = Vec::new();
-        for (b, second) in subjects.iter().enumerate() {
-            for (a, first) in subjects.iter().enumerate().take(b) {
+        for (a, first) in subjects.iter().enumerate() {
+            for (b, second) in subjects.iter().enumerate().skip(a + 1) {
                 let common: Vec<(&Vec<usize>, &Vec<usize>)> = first
                     .subjects
                     .iter()
@@ -212,7 +212,6 @@ impl Summary {
                 differences.push(Difference { a, b, subjects: common.len(), difference, low, high, cells });
             }
         }
-        differences.sort_by_key(|one| (one.a, one.b));
         let notes = notes(members, &samples, &groups, questions).iter().map(Note::from).collect();
         Ok(Self {
             labels: at.iter().map(|at| given(100.0 * at)).collect(),
@@ -335,13 +334,10 @@ impl Group<'_> {
     }
 }
 
-/// Residual variances at which a group's curve is told: twenty to each power of ten from 0.1 %, 2.5 % apart on
-/// a linear one.
+/// Residual variances at which a group's curve is told: twenty to each power of ten from 0.1 to 10 %, 1.25 % apart from there.
 fn curve() -> Vec<f64> {
-    let mut rv: Vec<f64> = (0..60).map(|k| libm::exp10(f64::from(k) / 20.0 - 3.0)).collect();
-    rv.extend((1..=40).map(|k| f64::from(k) / 40.0));
-    rv.sort_by(f64::total_cmp);
-    rv
+    let low = (0..40).map(|k| libm::exp10(f64::from(k) / 20.0 - 3.0));
+    low.chain((8..=80).map(|k| f64::from(k) / 80.0)).collect()
 }
 
 fn notes(members: &[Member], samples: &[Sample], groups: &[GroupSummary], questions: &Questions) -> Vec<Finding> {
@@ -380,9 +376,9 @@ fn electrode_sets(members: &[Member]) -> Option<Finding> {
             *count += 1;
             continue;
         }
-        let mut keys: Vec<String> = member.electrodes.iter().map(|label| Label::new(label).electrode()).collect();
-        keys.sort_unstable();
-        match sets.iter_mut().find(|(known, ..)| *known == keys) {
+        let keys: Vec<String> = member.electrodes.iter().map(|label| Label::new(label).electrode()).collect();
+        let same = |known: &[String]| known.len() == keys.len() && keys.iter().all(|key| known.contains(key));
+        match sets.iter_mut().find(|(known, ..)| same(known)) {
             Some((.., count)) => *count += 1,
             None => sets.push((keys, member, 1)),
         }
@@ -390,7 +386,7 @@ fn electrode_sets(members: &[Member]) -> Option<Finding> {
     if sets.len() < 2 {
         return None;
     }
-    let everywhere = |key: &String| sets.iter().all(|(keys, ..)| keys.binary_search(key).is_ok());
+    let everywhere = |key: &String| sets.iter().all(|(keys, ..)| keys.contains(key));
     let mut labels: Vec<String> = Vec::new();
     for label in sets.iter().flat_map(|(_, member, _)| &member.electrodes) {
         if !everywhere(&Label::new(label).electrode())

@@ -15,7 +15,7 @@ pub use cholesky::Cholesky;
 pub use lanes::Lanes;
 pub use least_squares::least_squares;
 pub use rank::rank;
-pub use resample::Resampler;
+pub use resample::{Resampler, select};
 pub use sum::{centre, dot, mean};
 pub use symmetric::{Eigen, Symmetric3};
 pub use vec3::Vec3;

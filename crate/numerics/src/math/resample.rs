@@ -38,8 +38,38 @@ impl Resampler {
         let mut means: Vec<f64> = self.times.chunks_exact(self.count).map(mean).collect();
         let last = means.len() - 1;
         let at = ((self.level * means.len() as f64) as usize).min(last / 2);
-        [at, last - at].map(|at| *means.select_nth_unstable_by(at, f64::total_cmp).1)
+        [at, last - at].map(|at| select(&mut means, at))
     }
+}
+
+/// The value that stands at this place in ascending order (Hoare 1961, Commun ACM 4:321–322); reorders the values, none of
+/// which may be not a number.
+///
+/// # Panics
+/// If there is no such place.
+pub fn select(values: &mut [f64], at: usize) -> f64 {
+    let (mut first, mut last) = (0, values.len() - 1);
+    while first < last {
+        let pivot = values[first + (last - first) / 2];
+        let (mut i, mut j) = (first, last);
+        loop {
+            while values[i] < pivot {
+                i += 1;
+            }
+            while values[j] > pivot {
+                j -= 1;
+            }
+            if i >= j {
+                break;
+            }
+            values.swap(i, j);
+            i += 1;
+            j -= 1;
+        }
+        // What stands up to j is at most the pivot, what stands from j + 1 on at least.
+        if at <= j { last = j } else { first = j + 1 }
+    }
+    values[at]
 }
 
 /// The expanded level for α = 0.05.
@@ -76,6 +106,22 @@ mod tests {
         // The same with `stats.norm.cdf`.
         assert!((expanded(13) - 0.011671).abs() < 2e-6, "{}", expanded(13));
         assert!((expanded(20) - 0.015881).abs() < 2e-6, "{}", expanded(20));
+    }
+
+    #[test]
+    fn selection_finds_what_sorting_finds() {
+        let mut chance = Pcg32::new(3, 1);
+        for count in 1..60 {
+            for kinds in [2, 5, 1000] {
+                let values: Vec<f64> = (0..count).map(|_| f64::from(chance.next_u32() % kinds)).collect();
+                let mut sorted = values.clone();
+                sorted.sort_by(f64::total_cmp);
+                for (at, value) in sorted.iter().enumerate() {
+                    assert_eq!(select(&mut values.clone(), at), *value, "{values:?} {at}");
+                    assert_eq!(select(&mut sorted.clone(), at), *value);
+                }
+            }
+        }
     }
 
     #[test]
