@@ -38,7 +38,7 @@ pub struct MapRow {
     pub nearest_site: Option<&'static str>,
     /// Which half of the head.
     pub side: &'static str,
-    /// Which ninth of the head, see [`region`].
+    /// Third of the head from front to back, with the side.
     pub region: &'static str,
     /// Mean square of the average-referenced map over the used electrodes, in its unit squared.
     pub power: f64,
