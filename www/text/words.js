@@ -402,16 +402,16 @@ export function dipolePlaceText(row, columns, order) {
 
 /**
  * What there is of a decomposition.
- * @param {{ subject: string, count: number, failure: Fault | null, counts: { here: number, fitted: number, within: number } | null }} facts
+ * @param {{ subject: string, count: number, failure: Fault | null, counts: { here: number, fitted: number, within: number } | null, threshold: number }} facts
  */
-export function decompositionText({ subject, count, failure, counts }) {
+export function decompositionText({ subject, count, failure, counts, threshold }) {
   const parts = subject === "" ? [] : [`subject ${shortName(subject)}`];
   if (counts === null) return [...parts, word(failure === null ? "state.busy" : "state.failed")].join(" · ");
   const { here, fitted, within } = counts;
   parts.push(here < count ? `${here.toLocaleString("en-GB")} of ${countText(count, "map")}` : countText(count, "map"));
   if (here > fitted) parts.push(`${(here - fitted).toLocaleString("en-GB")} not fitted`);
   if (fitted > 0) {
-    parts.push(`RV at most 15 %: ${within.toLocaleString("en-GB")} (${Math.round((100 * within) / fitted)} %)`);
+    parts.push(`RV at most ${enteredText(100 * threshold)} %: ${within.toLocaleString("en-GB")} (${Math.round((100 * within) / fitted)} %)`);
   }
   return typeset(parts.join(" · "));
 }

@@ -12,10 +12,7 @@ import { withTerms } from "./terms.js";
 
 /** @import { Session } from "../session/session.js" */
 
-/** Common practice: no source. */
-const NEAR_DIPOLAR = 0.15;
-
-/** @typedef {{ element: HTMLElement, update: (one: Decomposition, answer: Answer | null, is: { now: boolean, alone: boolean, stopped: boolean }) => void }} Line */
+/** @typedef {{ element: HTMLElement, update: (one: Decomposition, answer: Answer | null, is: { now: boolean, alone: boolean, stopped: boolean, threshold: number }) => void }} Line */
 
 /**
  * @param {string} id
@@ -93,14 +90,14 @@ function makeLine(session, id) {
 
   return {
     element,
-    update(one, answer, { now, alone, stopped }) {
+    update(one, answer, { now, alone, stopped, threshold }) {
       const fault = one.failure;
       const count = answer?.count ?? 0;
-      const counts = answer === null ? null : countsOf(answer.maps, NEAR_DIPOLAR);
+      const counts = answer === null ? null : countsOf(answer.maps, threshold);
       name.write(one.name);
       subject.write(one.subject);
       information.write(one.information === null ? "" : enteredText(one.information));
-      facts.textContent = decompositionText({ ...one, count, counts });
+      facts.textContent = decompositionText({ ...one, count, counts, threshold });
       progress.hidden = stopped || fault !== null || (counts !== null && counts.here >= count);
       if (counts === null) progress.removeAttribute("value");
       else progress.value = counts.here / Math.max(1, count);
@@ -138,7 +135,7 @@ export function showDecompositions(session) {
   });
 
   function show() {
-    const { decompositions, current, answer, stopped } = session.read();
+    const { decompositions, current, answer, stopped, threshold } = session.read();
     section.toggleAttribute("data-alone", decompositions.length < 2);
     section.hidden = decompositions.length < 2 && (answer === null || answer.count < 2);
     for (const id of lines.keys()) if (!decompositions.some((one) => one.id === id)) lines.delete(id);
@@ -146,7 +143,7 @@ export function showDecompositions(session) {
       const line = lines.get(one.id) ?? makeLine(session, one.id);
       lines.set(one.id, line);
       const now = one.id === current;
-      line.update(one, now ? answer : one.answer, { now, alone: decompositions.length < 2, stopped });
+      line.update(one, now ? answer : one.answer, { now, alone: decompositions.length < 2, stopped, threshold });
     }
     const wanted = [...lines.values()].map(({ element }) => element);
     if (wanted.some((element, at) => list.children[at] !== element) || list.childElementCount > wanted.length) {
@@ -156,4 +153,5 @@ export function showDecompositions(session) {
   session.watch((state) => state.decompositions, show);
   session.watch((state) => state.answer, show);
   session.watch((state) => state.stopped, show);
+  session.watch((state) => state.threshold, show);
 }
