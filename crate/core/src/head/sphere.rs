@@ -83,7 +83,7 @@ fn descend(points: &[Vec3], start: Vec3) -> Option<Vec3> {
         let unit = |i: usize, j: usize| if i == j { damping } else { 0.0 };
         let normal = Symmetric3::from_fn(|i, j| slopes.iter().map(|s| s[i] * s[j]).sum::<f64>() + unit(i, j));
         let right = slopes.iter().zip(&distances).fold(Vec3::ZERO, |sum, (&s, d)| sum + s * (d - radius));
-        let step = normal.solve(right)?;
+        let step = normal.factor()?.solve(right);
         if step.norm() <= 1e-13 * (1.0 + centre.norm()) {
             // At rest only if it is not the damping that holds it.
             return (right.norm() <= 1e-9 * points.len() as f64).then_some(centre);

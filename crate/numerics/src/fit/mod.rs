@@ -8,10 +8,11 @@ mod grid;
 mod objective;
 mod refine;
 
-use crate::forward::LeadField;
-use crate::math::{Vec3, centre, dot, mean};
-use grid::Grid;
+use crate::forward::{Field, LeadField};
+use crate::math::{Single, Vec3, centre, dot, mean};
+use grid::{Explained, Grid};
 use objective::Objective;
+use refine::{DOUBLE, Region, SINGLE, refine};
 
 /// A fitted dipole, in head coordinates.
 #[derive(Clone, Debug, PartialEq)]
@@ -35,7 +36,7 @@ impl Fit {
     fn better(self, other: Self) -> Self {
         let gain = self.residual_variance - other.residual_variance;
         let unproven = |fit: &Self| fit.stopped == Stopped::IterationLimit;
-        let close = gain.abs() <= refine::ROUNDING && unproven(&self) != unproven(&other);
+        let close = gain.abs() <= DOUBLE.rounding && unproven(&self) != unproven(&other);
         let other_is_better = if close { unproven(&self) } else { gain > 0.0 };
         if other_is_better { other } else { self }
     }
@@ -57,11 +58,16 @@ pub enum Stopped {
 #[derive(Clone, Debug)]
 pub struct Fitter {
     field: LeadField,
+    rough: Field<Single>,
     grid: Grid,
 }
 
 /// Starts that are refined for each map.
 const STARTS: usize = 5;
+
+/// Rough minima that lie at most this much of residual variance above the best are refined with all digits, besides what
+/// the rough lead field may lack.
+const MARGIN: f64 = 1e-4;
 
 /// Maps that share one pass over the grid.
 pub const BATCH: usize = 16;
@@ -69,8 +75,8 @@ pub const BATCH: usize = 16;
 impl Fitter {
     /// Prepares the grid of lead fields.
     pub fn new(field: LeadField) -> Self {
-        let grid = Grid::new(&field);
-        Self { field, grid }
+        let grid = Grid::new(field.rough_images(), field.directions(), field.reach());
+        Self { rough: field.rough(), field, grid }
     }
 
     /// The lead field that the fits use.
@@ -95,30 +101,36 @@ impl Fitter {
         assert!(maps.iter().all(|map| map.len() == self.field.count()), "one value for each electrode");
         let prepared: Vec<Option<(Vec<f64>, f64)>> = maps.iter().map(|map| normalise(map)).collect();
         let fitted: Vec<&[f64]> = prepared.iter().flatten().map(|(map, _)| &map[..]).collect();
-        let explained = self.grid.explained(&fitted);
-        let mut columns = explained.columns().into_iter();
-        prepared
-            .into_iter()
-            .map(|map| {
-                let (map, size) = map?;
-                let explained = columns.next()?;
-                let mut objective = Objective::new(&self.field, &map);
-                let mut minima: Vec<Fit> = Vec::with_capacity(STARTS);
-                for start in self.grid.starts(explained, STARTS) {
-                    minima.extend(self.refine(&mut objective, start, &minima));
-                }
-                let best = minima.into_iter().reduce(Fit::better)?;
-                Some(Fit {
-                    moment: best.moment * (size / self.field.scale()),
-                    evaluations: self.grid.count() + objective.evaluations(),
-                    ..best
-                })
-            })
-            .collect()
+        let mut explained = self.grid.explained(&fitted).into_iter();
+        let fits = prepared.into_iter().map(|map| {
+            let ((map, size), explained) = (map?, explained.next()?);
+            let best = self.search(&map, explained)?;
+            Some(Fit { moment: best.moment * (size / self.field.scale()), ..best })
+        });
+        fits.collect()
     }
 
-    fn refine(&self, objective: &mut Objective, start: Vec3, known: &[Fit]) -> Option<Fit> {
-        refine::refine(objective, start, self.field.reach(), self.grid.step(), known)
+    /// Refines the starts roughly, then with all digits what may be the best of them.
+    fn search(&self, map: &[f64], mut explained: Explained) -> Option<Fit> {
+        let region = Region { reach: self.field.reach(), step: self.grid.step() };
+        let starts = self.grid.starts(&mut explained, STARTS);
+        let mut surface = Objective::new(&self.rough, map);
+        let mut minima: Vec<Fit> = Vec::with_capacity(STARTS);
+        for &start in &starts {
+            minima.extend(refine(&mut surface, start, region, SINGLE, &minima));
+        }
+        let best = minima.iter().fold(f64::INFINITY, |best, minimum| best.min(minimum.residual_variance));
+        let margin = MARGIN + 4.0 * self.field.rough_images().error_bound();
+        let near = minima.iter().filter(|minimum| minimum.residual_variance <= best + margin).map(|m| m.position);
+        let mut exact = Objective::new(self.field.field(), map);
+        let mut fits: Vec<Fit> = Vec::with_capacity(1);
+        // Without a rough minimum the starts themselves.
+        for position in near.chain(starts.iter().copied().filter(|_| minima.is_empty())) {
+            fits.extend(refine(&mut exact, position, region, DOUBLE, &fits));
+        }
+        let best = fits.into_iter().reduce(Fit::better)?;
+        let evaluations = self.grid.count() + surface.evaluations() + exact.evaluations();
+        Some(Fit { evaluations, ..best })
     }
 
     /// The potential of a dipole in µV, average-referenced.
@@ -188,7 +200,7 @@ mod tests {
             let maps: Vec<&[f64]> = maps.iter().map(|map| &map[..]).collect();
             let together = fitter.grid.explained(&maps);
             for (index, map) in maps.iter().enumerate() {
-                assert!(fitter.grid.explained(&[map]).column(0).iter().eq(together.column(index).iter()));
+                assert!(fitter.grid.explained(&[map])[0] == together[index]);
             }
         }
     }

@@ -1,14 +1,15 @@
-use crate::forward::{LeadField, Local, along};
-use crate::math::lanes::{Lanes, blocks, dot, sum};
-use crate::math::{Symmetric3, Vec3};
+use crate::forward::{Field, Potential, along};
+use crate::math::lanes::blocks;
+use crate::math::{Lanes, Symmetric3, Vec3};
 
-/// Residual variance of one map as a function of the dipole's position.
-pub(super) struct Objective<'a> {
-    field: &'a LeadField,
+/// Residual variance of one map as a function of the dipole's position, in registers of one precision.
+pub(super) struct Objective<'a, L> {
+    field: &'a Field<L>,
     /// Average-referenced, unit length.
-    map: Vec<Lanes>,
-    /// 1 for each electrode, 0 where the last block is filled up.
-    present: Vec<Lanes>,
+    map: Vec<L>,
+    /// At the position evaluated last.
+    potentials: Vec<Potential<L>>,
+    residual: Vec<L>,
     evaluations: usize,
 }
 
@@ -22,113 +23,221 @@ pub(super) struct Evaluation {
     pub hessian: Symmetric3,
 }
 
-impl<'a> Objective<'a> {
+/// What a search descends on.
+pub(super) trait Surface {
+    /// `None` where the three columns of the lead field depend on each other.
+    fn evaluate(&mut self, position: Vec3) -> Option<Evaluation>;
+}
+
+impl<L: Lanes> Surface for Objective<'_, L> {
+    /// With A the average-referenced lead field, m = A⁺d, r = d − A m, Aⱼ = ∂A/∂pⱼ, vⱼ = Aⱼ m, wⱼ = Aⱼᵀ r and
+    /// tⱼ = Aᵀ vⱼ − wⱼ, the residual F = |r|² / 2 has
+    /// ∂F/∂pⱼ = −r·vⱼ and ∂²F/∂pⱼ∂pₖ = vⱼ·vₖ − tⱼᵀ (AᵀA)⁻¹ tₖ − r·(∂²A/∂pⱼ∂pₖ m).
+    ///
+    /// Means are taken out of sums, not of columns: Σ (a − ā)(b − b̄) = Σ a b − N ā b̄.
+    fn evaluate(&mut self, position: Vec3) -> Option<Evaluation> {
+        self.evaluations += 1;
+        self.field.potentials::<true>(position, &mut self.potentials);
+        let Normal { mean, matrix, right } = self.normal(position);
+        let normal = matrix.factor()?;
+        let moment = normal.solve(right);
+        let at = Place::new(position, moment);
+        let residual_variance = self.leave(&at, mean.dot(moment));
+        let w = self.first(&at);
+        let third = self.second(&at, &w);
+        let (vv, av) = self.slopes(&at, mean);
+        let t: [Vec3; 3] = [0, 1, 2].map(|j| Vec3([0, 1, 2].map(|k| av[k][j] - w.matrix.at(j, k))));
+        let solved = t.map(|t| normal.solve(t));
+        Some(Evaluation {
+            residual_variance,
+            moment,
+            gradient: w.matrix.apply(moment) * -2.0,
+            hessian: Symmetric3::from_fn(|j, k| 2.0 * (vv.at(j, k) - t[j].dot(solved[k]) - third.at(j, k))),
+        })
+    }
+}
+
+/// The normal equations: the mean of the lead field before it was referred to it, AᵀA and Aᵀd.
+struct Normal {
+    mean: Vec3,
+    matrix: Symmetric3,
+    right: Vec3,
+}
+
+/// A position with a moment, for all lanes.
+struct Place<L> {
+    position: Vec3,
+    moment: Vec3,
+    p: [L; 3],
+    m: [L; 3],
+    /// 2 p·m and 4 p·p.
+    pm2: L,
+    u4: L,
+}
+
+impl<L: Lanes> Place<L> {
+    fn new(position: Vec3, moment: Vec3) -> Self {
+        Self {
+            position,
+            moment,
+            p: position.0.map(L::splat),
+            m: moment.0.map(L::splat),
+            pm2: L::splat(2.0 * position.dot(moment)),
+            u4: L::splat(4.0 * position.dot(position)),
+        }
+    }
+}
+
+impl<'a, L: Lanes> Objective<'a, L> {
     /// Of an average-referenced map of unit length.
-    pub(super) fn new(field: &'a LeadField, map: &[f64]) -> Self {
-        Self { field, map: blocks(map), present: blocks(&vec![1.0; map.len()]), evaluations: 0 }
+    pub(super) fn new(field: &'a Field<L>, map: &[f64]) -> Self {
+        let map = blocks(map);
+        Self { field, potentials: Vec::with_capacity(map.len()), residual: map.clone(), map, evaluations: 0 }
     }
 
     pub(super) fn evaluations(&self) -> usize {
         self.evaluations
     }
 
-    /// With A the average-referenced lead field, m = A⁺d, r = d − A m, Aⱼ = ∂A/∂pⱼ, vⱼ = Aⱼ m, wⱼ = Aⱼᵀ r and
-    /// tⱼ = Aᵀ vⱼ − wⱼ, the residual F = |r|² / 2 has
-    /// ∂F/∂pⱼ = −r·vⱼ and ∂²F/∂pⱼ∂pₖ = vⱼ·vₖ − tⱼᵀ (AᵀA)⁻¹ tₖ − r·(∂²A/∂pⱼ∂pₖ m).
-    ///
-    /// `None` where the three columns of A depend on each other.
-    pub(super) fn evaluate(&mut self, position: Vec3) -> Option<Evaluation> {
-        self.evaluations += 1;
-        let local = self.field.local(position);
-        let columns = self.centred(local.leads());
-        let normal = Symmetric3::from_fn(|i, j| dot(&columns[i], &columns[j]));
-        let right = Vec3([0, 1, 2].map(|i| dot(&columns[i], &self.map)));
-        let moment = normal.solve(right)?;
-        let [x, y, z] = &columns;
-        let residual: Vec<Lanes> = (0..self.map.len())
-            .map(|i| self.map[i] - (x[i] * moment[0] + y[i] * moment[1] + z[i] * moment[2]))
-            .collect();
-
-        let Slopes { v, w, third } = self.slopes(&local, moment, &residual);
-        let t: [Vec3; 3] = [0, 1, 2].map(|j| Vec3([0, 1, 2].map(|k| dot(&columns[k], &v[j]) - w.at(j, k))));
-        let solved = t.map(|t| normal.solve(t).unwrap_or_default());
-        Some(Evaluation {
-            residual_variance: dot(&residual, &residual),
-            moment,
-            gradient: w.apply(moment) * -2.0,
-            hessian: Symmetric3::from_fn(|j, k| 2.0 * (dot(&v[j], &v[k]) - t[j].dot(solved[k]) - third.at(j, k))),
-        })
-    }
-
-    /// Three columns, each less its mean.
-    fn centred(&self, blocks: impl Iterator<Item = [Lanes; 3]>) -> [Vec<Lanes>; 3] {
-        let mut columns = [0, 1, 2].map(|_| Vec::with_capacity(self.map.len()));
-        for (block, present) in blocks.zip(&self.present) {
-            for (column, values) in columns.iter_mut().zip(block) {
-                column.push(values * *present);
+    #[inline(never)]
+    fn normal(&self, position: Vec3) -> Normal {
+        let p2 = position.0.map(|c| L::splat(2.0 * c));
+        let (mut sum, mut squares, mut right) = ([L::default(); 3], [L::default(); 6], [L::default(); 3]);
+        for ((e, t), &d) in self.field.blocks().iter().zip(&self.potentials).zip(&self.map) {
+            let a: [L; 3] = core::array::from_fn(|i| t.s * e[i] + t.u * p2[i]);
+            for i in 0..3 {
+                sum[i] += a[i];
+                right[i] += a[i] * d;
             }
+            add_squares(&mut squares, &a, &a);
         }
-        for column in &mut columns {
-            let mean = dot(column, &self.present) / self.field.count() as f64;
-            column.iter_mut().zip(&self.present).for_each(|(values, present)| *values -= *present * mean);
-        }
-        columns
+        let count = self.field.count() as f64;
+        let mean = Vec3(sum.map(|sum| sum.sum() / count));
+        Normal { mean, matrix: less_means(squares, mean, count), right: Vec3(right.map(L::sum)) }
     }
 
-    fn slopes(&self, local: &Local, m: Vec3, residual: &[Lanes]) -> Slopes {
-        let p = local.position;
-        let pm = p.dot(m);
-        // Sums over the electrodes of what stands before e eᵀ, e, and nothing, in Σ r ∂A/∂p and Σ r ∂²A/∂p² m.
-        let (mut w, mut third) = (Sums::default(), Sums::default());
-        let v = self.centred(local.terms().zip(residual).map(|((e, t), &r)| {
-            let em = along(e, m);
-            let along_e = t.ss * em + t.us * (2.0 * pm);
-            let along_p = t.us * em * 2.0 + t.uu * (4.0 * pm);
-            w.add(e, r * t.ss, r * t.us * 2.0, r * t.uu * 4.0, r * t.u * 2.0);
-            third.add(
-                e,
-                r * (t.sss * em + t.uss * (2.0 * pm)),
-                r * (t.uss * em * 2.0 + t.uus * (4.0 * pm)),
-                r * (t.uus * em * 4.0 + t.uuu * (8.0 * pm)),
-                r * along_p,
-            );
-            [0, 1, 2].map(|axis| along_e * e[axis] + along_p * p[axis] + t.u * (2.0 * m[axis]))
-        }));
-        let first = w.matrix(p);
-        let (w_e, w_pp) = (w.e(), sum(w.pp));
-        let both = |a: Vec3, b: Vec3, i: usize, j: usize| a[i] * b[j] + a[j] * b[i];
-        let bare = third.matrix(p);
-        Slopes {
-            v,
-            w: first,
-            third: Symmetric3::from_fn(|i, j| bare.at(i, j) + both(w_e, m, i, j) + w_pp * both(p, m, i, j)),
+    /// What the dipole leaves over, and the sum of its squares.
+    #[inline(never)]
+    fn leave(&mut self, at: &Place<L>, mean: f64) -> f64 {
+        let mean = L::splat(mean);
+        let mut squares = L::default();
+        let blocks = self.field.blocks().iter().zip(&self.potentials);
+        let end = self.map.len() - 1;
+        for (i, ((e, t), (&d, residual))) in blocks.zip(self.map.iter().zip(&mut self.residual)).enumerate() {
+            let mean = if i == end { mean * self.field.last() } else { mean };
+            let r = d - (t.s * along(e, &at.m) + t.u * at.pm2) + mean;
+            *residual = r;
+            squares += r * r;
         }
+        squares.sum()
+    }
+
+    /// W with rows wⱼ = Aⱼᵀ r.
+    #[inline(never)]
+    fn first(&self, at: &Place<L>) -> Weighed {
+        let two = L::splat(2.0);
+        let mut sums = Sums::default();
+        for ((e, t), &r) in self.field.blocks().iter().zip(&self.potentials).zip(&self.residual) {
+            let t = t.terms(at.u4, along(e, &at.p));
+            let r2 = r * two;
+            sums.add(e, r * t.ss, r2 * t.us, r2 * two * t.uu, r2 * t.u);
+        }
+        sums.weighed(at.position)
+    }
+
+    /// r·(∂²A/∂pⱼ∂pₖ m).
+    #[inline(never)]
+    fn second(&self, at: &Place<L>, first: &Weighed) -> Symmetric3 {
+        let (two, four) = (L::splat(2.0), L::splat(4.0));
+        let mut sums = Sums::default();
+        for ((e, t), &r) in self.field.blocks().iter().zip(&self.potentials).zip(&self.residual) {
+            let t = t.terms(at.u4, along(e, &at.p));
+            let em = along(e, &at.m);
+            let (rem2, rpm2) = (r * em * two, r * at.pm2);
+            sums.add(
+                e,
+                r * t.sss * em + t.uss * rpm2,
+                t.uss * rem2 + t.uus * two * rpm2,
+                t.uus * two * rem2 + t.uuu * four * rpm2,
+                t.us * rem2 + t.uu * two * rpm2,
+            );
+        }
+        let bare = sums.weighed(at.position).matrix;
+        let (p, m) = (at.position, at.moment);
+        let both = |a: Vec3, b: Vec3, i: usize, j: usize| a[i] * b[j] + a[j] * b[i];
+        Symmetric3::from_fn(|i, j| bare.at(i, j) + both(first.e, m, i, j) + first.pp * both(p, m, i, j))
+    }
+
+    /// vⱼ·vₖ and AₖᵀVⱼ, rows k.
+    #[inline(never)]
+    fn slopes(&self, at: &Place<L>, mean: Vec3) -> (Symmetric3, [[f64; 3]; 3]) {
+        let two = L::splat(2.0);
+        let p2 = at.p.map(|c| c * two);
+        let (mut sum, mut squares, mut products) = ([L::default(); 3], [L::default(); 6], [[L::default(); 3]; 3]);
+        for (e, t) in self.field.blocks().iter().zip(&self.potentials) {
+            let a: [L; 3] = core::array::from_fn(|i| t.s * e[i] + t.u * p2[i]);
+            let t = t.terms(at.u4, along(e, &at.p));
+            let em = along(e, &at.m);
+            let along_e = t.ss * em + t.us * at.pm2;
+            let along_p = (t.us * em + t.uu * at.pm2) * two;
+            let along_m = t.u * two;
+            let v: [L; 3] = core::array::from_fn(|j| along_e * e[j] + along_p * at.p[j] + along_m * at.m[j]);
+            for j in 0..3 {
+                sum[j] += v[j];
+                for k in 0..3 {
+                    products[k][j] += a[k] * v[j];
+                }
+            }
+            add_squares(&mut squares, &v, &v);
+        }
+        let count = self.field.count() as f64;
+        let v = Vec3(sum.map(|sum| sum.sum() / count));
+        let products =
+            core::array::from_fn(|k| core::array::from_fn(|j| products[k][j].sum() - count * mean[k] * v[j]));
+        (less_means(squares, v, count), products)
     }
 }
 
-/// vⱼ = Aⱼ m by columns; W with rows wⱼ = Aⱼᵀ r; and r·(∂²A/∂pⱼ∂pₖ m).
-struct Slopes {
-    v: [Vec<Lanes>; 3],
-    w: Symmetric3,
-    third: Symmetric3,
+/// Rows and columns of the upper triangle.
+const UPPER: [(usize, usize); 6] = [(0, 0), (0, 1), (0, 2), (1, 1), (1, 2), (2, 2)];
+
+#[inline(always)]
+fn add_squares<L: Lanes>(sums: &mut [L; 6], a: &[L; 3], b: &[L; 3]) {
+    for (sum, (i, j)) in sums.iter_mut().zip(UPPER) {
+        *sum += a[i] * b[j];
+    }
+}
+
+fn symmetric<L: Lanes>(sums: [L; 6]) -> impl Fn(usize, usize) -> f64 {
+    let sums = sums.map(L::sum);
+    move |i, j| sums[[[0, 1, 2], [1, 3, 4], [2, 4, 5]][i][j]]
+}
+
+fn less_means<L: Lanes>(squares: [L; 6], mean: Vec3, count: f64) -> Symmetric3 {
+    let squares = symmetric(squares);
+    Symmetric3::from_fn(|i, j| squares(i, j) - count * mean[i] * mean[j])
 }
 
 /// The coefficients of Σ [α e eᵀ + β (e pᵀ + p eᵀ) + γ p pᵀ + δ 1], lane by lane.
 #[derive(Default)]
-struct Sums {
-    ee: [Lanes; 6],
-    e: [Lanes; 3],
-    pp: Lanes,
-    one: Lanes,
+struct Sums<L> {
+    ee: [L; 6],
+    e: [L; 3],
+    pp: L,
+    one: L,
 }
 
-impl Sums {
-    #[inline]
-    fn add(&mut self, e: &[Lanes; 3], ee: Lanes, ep: Lanes, pp: Lanes, one: Lanes) {
-        let scaled = e.map(|component| ee * component);
-        for (k, (i, j)) in [(0, 0), (0, 1), (0, 2), (1, 1), (1, 2), (2, 2)].into_iter().enumerate() {
-            self.ee[k] += scaled[i] * e[j];
-        }
+/// Its sum, and two of the coefficients.
+struct Weighed {
+    matrix: Symmetric3,
+    e: Vec3,
+    pp: f64,
+}
+
+impl<L: Lanes> Sums<L> {
+    #[inline(always)]
+    fn add(&mut self, e: &[L; 3], ee: L, ep: L, pp: L, one: L) {
+        add_squares(&mut self.ee, &[ee * e[0], ee * e[1], ee * e[2]], e);
         for axis in 0..3 {
             self.e[axis] += ep * e[axis];
         }
@@ -136,16 +245,13 @@ impl Sums {
         self.one += one;
     }
 
-    fn e(&self) -> Vec3 {
-        Vec3(self.e.map(sum))
-    }
-
-    fn matrix(&self, p: Vec3) -> Symmetric3 {
-        let (e, pp, one) = (self.e(), sum(self.pp), sum(self.one));
-        Symmetric3::from_fn(|i, j| {
-            let ee = sum(self.ee[[[0, 1, 2], [1, 3, 4], [2, 4, 5]][i][j]]);
-            ee + e[i] * p[j] + e[j] * p[i] + pp * p[i] * p[j] + if i == j { one } else { 0.0 }
-        })
+    fn weighed(&self, p: Vec3) -> Weighed {
+        let (ee, e) = (symmetric(self.ee), Vec3(self.e.map(L::sum)));
+        let (pp, one) = (self.pp.sum(), self.one.sum());
+        let matrix = Symmetric3::from_fn(|i, j| {
+            ee(i, j) + e[i] * p[j] + e[j] * p[i] + pp * p[i] * p[j] + if i == j { one } else { 0.0 }
+        });
+        Weighed { matrix, e, pp }
     }
 }
 
@@ -169,7 +275,7 @@ mod tests {
         let length = dot(&map, &map).sqrt();
         map.iter_mut().for_each(|v| *v /= length);
         let field = LeadField::new(&Shells::standard(), 88.0, directions);
-        let mut objective = Objective::new(&field, &map);
+        let mut objective = Objective::new(field.field(), &map);
         for p in [Vec3::ZERO, Vec3::new(0.2, -0.4, 0.3), Vec3::new(-0.5, 0.1, 0.65)] {
             let here = objective.evaluate(p).unwrap();
             let h = 1e-5;

@@ -1,15 +1,34 @@
-use super::objective::{Evaluation, Objective};
+use super::objective::{Evaluation, Surface};
 use super::{Fit, Stopped};
 use crate::math::{Symmetric3, Vec3};
 
-/// Most steps of one refinement; four to ten are usual.
+/// Most steps of one refinement; two to ten are usual.
 const MOST_STEPS: usize = 100;
-
-/// Decreases of residual variance below this are rounding; there the gradient tells whether a step was good.
-pub(super) const ROUNDING: f64 = 1e-13;
 
 /// Largest gradient of residual variance, per scalp radius, at a minimum; fits end four orders below.
 const STATIONARY: f64 = 1e-6;
+
+/// How far digits reach.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct Precision {
+    /// Decreases of residual variance below this are rounding; there the gradient tells whether a step was good.
+    pub rounding: f64,
+    /// Steps below this, in reaches, end the search.
+    pub step: f64,
+}
+
+/// Of what is answered.
+pub(super) const DOUBLE: Precision = Precision { rounding: 1e-13, step: 1e-10 };
+
+/// Of searches for starts.
+pub(super) const SINGLE: Precision = Precision { rounding: 3e-7, step: 1e-3 };
+
+/// The ball of allowed positions, and the distance of the starts in it.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct Region {
+    pub reach: f64,
+    pub step: f64,
+}
 
 /// Newton steps within a trust region (Conn, Gould & Toint, Trust-Region Methods, 2000, §7.3), inside the ball of radius
 /// `reach`. On its surface, while the residual falls outwards, steps stay on the surface: with unit normal n the tangent
@@ -18,26 +37,33 @@ const STATIONARY: f64 = 1e-6;
 ///
 /// The search gives up, with `None`, where it comes upon a minimum that is known already, or if no dipole at the start has a
 /// map of its own.
-pub(super) fn refine(objective: &mut Objective, start: Vec3, reach: f64, step: f64, known: &[Fit]) -> Option<Fit> {
+pub(super) fn refine(
+    surface: &mut dyn Surface,
+    start: Vec3,
+    region: Region,
+    precision: Precision,
+    known: &[Fit],
+) -> Option<Fit> {
+    let reach = region.reach;
     let mut position = within(start, reach);
-    let mut here = objective.evaluate(position)?;
-    let mut trust = step;
+    let mut here = surface.evaluate(position)?;
+    let mut trust = region.step;
     let mut converged = false;
     for _ in 0..MOST_STEPS {
         let (gradient, hessian) = reduced(position, &here, reach);
         let target = within(position + trust_region_step(&hessian, gradient, trust), reach);
         let moved = target - position;
         let predicted = -(gradient.dot(moved) + 0.5 * moved.dot(hessian.apply(moved)));
-        if moved.norm() <= 1e-10 * reach {
+        if moved.norm() <= precision.step * reach {
             converged = true;
             break;
         }
-        let there = objective.evaluate(target);
+        let there = surface.evaluate(target);
         let gained = there.map_or(f64::NEG_INFINITY, |there| here.residual_variance - there.residual_variance);
-        let rounding = predicted.abs() <= ROUNDING;
+        let rounding = predicted.abs() <= precision.rounding;
         let better = there.filter(|there| match rounding {
             false => gained > 0.0,
-            true => gained > -ROUNDING && reduced(target, there, reach).0.norm() < gradient.norm(),
+            true => gained > -precision.rounding && reduced(target, there, reach).0.norm() < gradient.norm(),
         });
         if better.is_none() || gained < 0.25 * predicted {
             trust = 0.25 * moved.norm();
@@ -46,7 +72,7 @@ pub(super) fn refine(objective: &mut Objective, start: Vec3, reach: f64, step: f
         }
         if let Some(there) = better {
             (position, here) = (target, there);
-            if known.iter().any(|minimum| leads_to(minimum, position, &here, step)) {
+            if known.iter().any(|minimum| leads_to(minimum, position, &here, region.step)) {
                 return None;
             }
         } else if rounding {
@@ -100,11 +126,17 @@ fn reduced(position: Vec3, here: &Evaluation, reach: f64) -> (Vec3, Symmetric3) 
     (here.gradient - n * outward, tangent)
 }
 
-/// The step that minimises g·δ + δᵀHδ / 2 within |δ| ≤ radius, from the eigenvalues λ₀ ≤ λ₁ ≤ λ₂ of H (ibid.).
+/// The step that minimises g·δ + δᵀHδ / 2 within |δ| ≤ radius.
+fn trust_region_step(hessian: &Symmetric3, gradient: Vec3, radius: f64) -> Vec3 {
+    let newton = hessian.factor().map(|factor| factor.solve(-gradient));
+    newton.filter(|step| step.norm() <= radius).unwrap_or_else(|| step_to_edge(hessian, gradient, radius))
+}
+
+/// The same by the eigenvalues λ₀ ≤ λ₁ ≤ λ₂ of H (ibid.), where the edge may hold the step.
 ///
 /// On the edge it solves (H + νI) δ = −g for the ν ≥ 0 above −λ₀ that gives |δ| = radius. What is searched is
 /// t = ν + λ₀ > 0, so that no λᵢ + ν = (λᵢ − λ₀) + t is lost to rounding.
-fn trust_region_step(hessian: &Symmetric3, gradient: Vec3, radius: f64) -> Vec3 {
+fn step_to_edge(hessian: &Symmetric3, gradient: Vec3, radius: f64) -> Vec3 {
     let eigen = hessian.eigen();
     let lowest = eigen.values[0];
     let size = gradient.norm();
@@ -124,12 +156,31 @@ fn trust_region_step(hessian: &Symmetric3, gradient: Vec3, radius: f64) -> Vec3 
             return if lowest < 0.0 { inner + eigen.vectors[0] * room.sqrt() } else { inner };
         }
     }
+    // Newton's method for 1 / |δ| = 1 / radius, which is nearly linear in t, kept between two bounds.
     let (mut low, mut high) = (least, least + size / radius);
+    let mut t = high;
     for _ in 0..100 {
-        let middle = 0.5 * (low + high);
-        if step(middle).norm() > radius { low = middle } else { high = middle }
+        let parts: [f64; 3] = core::array::from_fn(|i| match slopes[i] {
+            0.0 => 0.0,
+            slope => slope / (eigen.values[i] - lowest + t),
+        });
+        let length2: f64 = parts.iter().map(|part| part * part).sum();
+        let length = length2.sqrt();
+        if length > radius {
+            low = t
+        } else {
+            high = t
+        }
+        if (length - radius).abs() <= 1e-12 * radius {
+            break;
+        }
+        // −½ d|δ|² / dt
+        let falls: f64 =
+            (0..3).filter(|&i| parts[i] != 0.0).map(|i| parts[i] * parts[i] / (eigen.values[i] - lowest + t)).sum();
+        let next = t + (length / radius - 1.0) * length2 / falls;
+        t = if next > low && next < high { next } else { 0.5 * (low + high) };
     }
-    step(high)
+    step(t)
 }
 
 #[cfg(test)]

@@ -1,6 +1,7 @@
+use super::field::along;
 use super::potential::Potential;
-use super::{MAX_ECCENTRICITY, QUICK_TOLERANCE, Series};
-use crate::math::{Lanes, least_squares};
+use super::{MAX_ECCENTRICITY, Series};
+use crate::math::{Lanes, Vec3, least_squares};
 use crate::shells::Shells;
 
 /// A layered sphere's lead field by a few image sources.
@@ -14,8 +15,8 @@ use crate::shells::Shells;
 /// The error of the lead field is bounded, not sampled: with |∇Hₙ| ≤ n |p|ⁿ⁻¹ (see [`Series`]) it is at most
 /// Σₙ |gₙ − approximation| n |p|ⁿ⁻¹. Its derivatives, which only steer the search, have no bound of their own.
 #[derive(Clone, Debug)]
-pub struct Images {
-    images: Vec<Image>,
+pub struct Images<L> {
+    images: Vec<Image<L>>,
     error_bound: f64,
 }
 
@@ -23,24 +24,24 @@ pub struct Images {
 ///
 /// Φ holds α/μ · 1/D and −β/μ · ln E at μp; each derivative by s brings μ, each by u brings μ² and −½.
 #[derive(Clone, Copy, Debug)]
-struct Image {
-    mu: Lanes,
-    mu2: f64,
-    s: [Lanes; 2],
-    u: [Lanes; 2],
-    us: [Lanes; 2],
-    uu: [Lanes; 2],
-    uus: [Lanes; 2],
-    uuu: [Lanes; 2],
+struct Image<L> {
+    mu: L,
+    mu2: L,
+    s: [L; 2],
+    u: [L; 2],
+    us: [L; 2],
+    uu: [L; 2],
+    uus: [L; 2],
+    uuu: [L; 2],
 }
 
-impl Image {
+impl<L: Lanes> Image<L> {
     fn new(mu: f64, alpha: f64, beta: f64) -> Self {
-        let factors = |factor: f64, odd: f64| [Lanes::splat(factor * odd * alpha), Lanes::splat(factor * beta)];
+        let factors = |factor: f64, odd: f64| [L::splat(factor * odd * alpha), L::splat(factor * beta)];
         let by_u = -0.5 * mu;
         Self {
-            mu: Lanes::splat(mu),
-            mu2: mu * mu,
+            mu: L::splat(mu),
+            mu2: L::splat(mu * mu),
             s: factors(1.0, 1.0),
             u: factors(by_u, 1.0),
             us: factors(by_u * mu, 3.0),
@@ -51,18 +52,17 @@ impl Image {
     }
 }
 
-impl Images {
-    /// As few images as keep the error bound under [`QUICK_TOLERANCE`] for all sources up to [`MAX_ECCENTRICITY`];
-    /// `None` where sixteen do not suffice.
-    pub fn new(shells: &Shells, series: &Series) -> Option<Self> {
+impl<L: Lanes> Images<L> {
+    /// The first of these numbers of images whose error bound for all sources up to [`MAX_ECCENTRICITY`] is at most
+    /// `tolerance`, else `most`.
+    pub(super) fn new(shells: &Shells, series: &Series, numbers: &[usize], most: usize, tolerance: f64) -> Self {
         let reach = MAX_ECCENTRICITY * shells.brain_ratio();
         let terms = series.terms(reach, 0);
         let gains = &series.gains()[..terms];
         let weights = weights(gains, reach);
-        [1, 8, 10, 12, 14, 16]
-            .into_iter()
-            .map(|count| Self::solve(count, gains, &weights, reach))
-            .find(|images| images.error_bound <= QUICK_TOLERANCE)
+        let solve = |count: usize| Self::solve(count, gains, &weights, reach);
+        let found = numbers.iter().map(|&count| solve(count)).find(|images| images.error_bound <= tolerance);
+        found.unwrap_or_else(|| solve(most))
     }
 
     /// Largest possible error, whatever the position, moment and place on the scalp, over the largest value on the scalp of a
@@ -107,27 +107,40 @@ impl Images {
         Self { images, error_bound }
     }
 
+    /// The lead field of one electrode, on the unit sphere, for several positions side by side.
+    #[inline(never)]
+    pub(crate) fn lead(&self, direction: Vec3, p: &[L; 3]) -> [L; 3] {
+        let e = direction.0.map(L::splat);
+        let t = self.potential::<false>(along(p, p), along(&e, p));
+        let twice_u = t.u + t.u;
+        [0, 1, 2].map(|axis| t.s * e[axis] + twice_u * p[axis])
+    }
+
     /// Derivatives of Φ, from those of a = 1/D and −ln E with E = 1/b = 1 − s + D; the first ones only unless `HIGHER`.
-    #[inline]
-    pub(super) fn potential<const HIGHER: bool>(&self, u: f64, s: Lanes) -> Potential {
+    #[inline(always)]
+    pub(super) fn potential<const HIGHER: bool>(&self, u: L, s: L) -> Potential<L> {
         let mut sum = Potential::default();
-        let one = Lanes::ONE;
+        let one = L::splat(1.0);
         for image in &self.images {
             let s = s * image.mu;
             let rest = one - s;
-            let d = (rest - s + Lanes::splat(image.mu2 * u)).sqrt();
-            let (a, b) = (one / d, one / (rest + d));
-            let (a2, ab) = (a * a, a * b);
+            let d = (rest - s + image.mu2 * u).sqrt();
+            let e = rest + d;
+            // One division for both.
+            let ab = one / (d * e);
+            let (a, b) = (ab * e, ab * d);
+            let a2 = a * a;
             let a3 = a2 * a;
             sum.s += a3 * image.s[0] + (b + ab) * image.s[1];
             sum.u += a3 * image.u[0] + ab * image.u[1];
             if !HIGHER {
                 continue;
             }
-            let (a5, a3b, ab2, a2b2) = (a3 * a2, a2 * ab, ab * b, ab * ab);
-            sum.us += a5 * image.us[0] + (a3b + ab2 + a2b2) * image.us[1];
-            sum.uu += a5 * image.uu[0] + (a3b + a2b2) * image.uu[1];
-            let (a7, a5b_a4b2, a3b3) = (a5 * a2, (a3b + a2b2) * a2, a2b2 * ab);
+            let (a5, ab2, a2b2) = (a3 * a2, ab * b, ab * ab);
+            let even = a2 * ab + a2b2;
+            sum.us += a5 * image.us[0] + (even + ab2) * image.us[1];
+            sum.uu += a5 * image.uu[0] + even * image.uu[1];
+            let (a7, a5b_a4b2, a3b3) = (a5 * a2, even * a2, a2b2 * ab);
             let both = a5b_a4b2 + a5b_a4b2 + a5b_a4b2 + a3b3 + a3b3;
             let a2b3 = a2b2 * b;
             sum.uus += a7 * image.uus[0] + (both + a2 * ab2 + a2b3 + a2b3) * image.uus[1];

@@ -1,37 +1,34 @@
-use super::potential::{Potential, Terms};
-use super::{Images, MAX_ECCENTRICITY, Series};
-use crate::math::Vec3;
-use crate::math::lanes::{Lanes, WIDTH, blocks};
+use super::field::{Field, Source, along};
+use super::{Images, MAX_ECCENTRICITY, QUICK_TOLERANCE, ROUGH_TOLERANCE, Series};
+use crate::math::{Double, Lanes, Single, Vec3};
 use crate::shells::Shells;
 use ndarray::{Array2, Axis};
+use std::sync::Arc;
 
 /// The lead field of a set of electrodes on a layered sphere.
 #[derive(Clone, Debug)]
 pub struct LeadField {
     directions: Vec<Vec3>,
-    blocks: Vec<Block>,
-    series: Series,
-    images: Option<Images>,
+    kernels: Arc<Kernels>,
+    field: Field<Double>,
     scale: f64,
     brain_ratio: f64,
 }
 
-/// Components x, y, z of the directions of a block of electrodes; zero where there are no more.
-pub(crate) type Block = [Lanes; 3];
-
-/// The lead field around one position: what the fit needs of it.
-#[derive(Clone, Debug)]
-pub struct Local<'a> {
-    pub(crate) position: Vec3,
-    blocks: &'a [Block],
-    potentials: Vec<Potential>,
+/// What belongs to the shells alone.
+#[derive(Debug)]
+struct Kernels {
+    series: Arc<Series>,
+    images: Option<Images<Double>>,
+    rough: Images<Single>,
 }
 
 impl LeadField {
     /// Electrodes in these unit directions from the centre, on a head of this scalp radius in millimetres.
     pub fn new(shells: &Shells, radius_mm: f64, directions: Vec<Vec3>) -> Self {
         let series = Series::new(shells);
-        let images = Images::new(shells, &series);
+        let images = Images::new(shells, &series, &[1, 8, 10, 12, 14], 16, QUICK_TOLERANCE);
+        let images = Some(images).filter(|images| images.error_bound() <= QUICK_TOLERANCE);
         Self::with_kernels(shells, radius_mm, directions, series, images)
     }
 
@@ -42,13 +39,8 @@ impl LeadField {
 
     /// Other electrodes on the same head.
     pub fn elsewhere(&self, directions: Vec<Vec3>) -> Self {
-        Self {
-            blocks: in_blocks(&directions),
-            directions,
-            series: self.series.clone(),
-            images: self.images.clone(),
-            ..*self
-        }
+        let field = Field::new(&directions, self.field.source().clone());
+        Self { directions, field, kernels: Arc::clone(&self.kernels), ..*self }
     }
 
     fn with_kernels(
@@ -56,12 +48,16 @@ impl LeadField {
         radius_mm: f64,
         directions: Vec<Vec3>,
         series: Series,
-        images: Option<Images>,
+        images: Option<Images<Double>>,
     ) -> Self {
-        let blocks = in_blocks(&directions);
+        let series = Arc::new(series);
+        let rough = Images::new(shells, &series, &[1, 4, 5, 6], 8, ROUGH_TOLERANCE);
+        let source = images.clone().map_or_else(|| Source::Series(Arc::clone(&series)), Source::Images);
+        let field = Field::new(&directions, source);
         // 1 nAm over 1 S/m · 1 mm² is 1 mV = 1000 µV.
         let scale = 1000.0 / (4.0 * core::f64::consts::PI * shells.specs()[0].conductivity * radius_mm * radius_mm);
-        Self { directions, blocks, series, images, scale, brain_ratio: shells.brain_ratio() }
+        let kernels = Arc::new(Kernels { series, images, rough });
+        Self { directions, kernels, field, scale, brain_ratio: shells.brain_ratio() }
     }
 
     /// Unit directions of the electrodes.
@@ -85,13 +81,18 @@ impl LeadField {
     }
 
     /// The quick evaluation, where one is accurate enough for this head.
-    pub fn images(&self) -> Option<&Images> {
-        self.images.as_ref()
+    pub fn images(&self) -> Option<&Images<Double>> {
+        self.kernels.images.as_ref()
+    }
+
+    /// The evaluation for searches.
+    pub fn rough_images(&self) -> &Images<Single> {
+        &self.kernels.rough
     }
 
     /// The series.
     pub fn series(&self) -> &Series {
-        &self.series
+        &self.kernels.series
     }
 
     /// κ: µV per nAm of a lead field of 1 on the unit sphere.
@@ -99,95 +100,69 @@ impl LeadField {
         self.scale
     }
 
+    /// What the fit evaluates.
+    pub(crate) fn field(&self) -> &Field<Double> {
+        &self.field
+    }
+
+    /// What the search for starts evaluates.
+    pub(crate) fn rough(&self) -> Field<Single> {
+        Field::new(&self.directions, Source::Images(self.kernels.rough.clone()))
+    }
+
     /// Lead field by the series: potential in µV per nAm of moment along x, y, z; one row per electrode. The potential's
     /// mean over the whole scalp is zero; `position` is in scalp radii from the centre.
     pub fn exact(&self, position: Vec3) -> Array2<f64> {
-        self.matrix(&self.local_by(position, None, 0))
+        self.matrix(&Field::new(&self.directions, Source::Series(Arc::clone(&self.kernels.series))), position)
     }
 
     /// The same by the quick evaluation, or by the series where there is none.
     pub fn quick(&self, position: Vec3) -> Array2<f64> {
-        self.matrix(&self.local_by(position, self.images.as_ref(), 0))
+        self.matrix(&self.field, position)
+    }
+
+    fn matrix(&self, field: &Field<Double>, position: Vec3) -> Array2<f64> {
+        let mut potentials = Vec::new();
+        field.potentials::<false>(position, &mut potentials);
+        let twice_p = position.0.map(|c| Double::splat(2.0 * c));
+        let mut rows = Array2::zeros((self.count(), 3));
+        for ((mut rows, e), t) in rows.axis_chunks_iter_mut(Axis(0), Double::WIDTH).zip(field.blocks()).zip(&potentials)
+        {
+            for axis in 0..3 {
+                let lead = t.s * e[axis] + t.u * twice_p[axis];
+                fill(rows.column_mut(axis), lead, self.scale);
+            }
+        }
+        rows
     }
 
     /// Derivatives of the lead field: for each electrode the symmetric matrix ∂Lᵢ/∂pⱼ in µV per nAm and scalp radius,
     /// as rows (xx, xy, xz, yy, yz, zz).
     pub fn gradient(&self, position: Vec3) -> Array2<f64> {
-        let p = position;
+        let mut potentials = Vec::new();
+        self.field.potentials::<true>(position, &mut potentials);
+        let (p, two) = (position.0.map(Double::splat), Double::splat(2.0));
+        let u4 = Double::splat(4.0 * position.dot(position));
         let mut rows = Array2::zeros((self.count(), 6));
-        for (mut rows, (e, t)) in rows.axis_chunks_iter_mut(Axis(0), WIDTH).zip(self.local(position).terms()) {
+        let blocks = self.field.blocks().iter().zip(&potentials);
+        for (mut rows, (e, potential)) in rows.axis_chunks_iter_mut(Axis(0), Double::WIDTH).zip(blocks) {
+            let t = potential.terms(u4, along(e, &p));
             for (column, (i, j)) in [(0, 0), (0, 1), (0, 2), (1, 1), (1, 2), (2, 2)].into_iter().enumerate() {
-                let diagonal = if i == j { t.u * 2.0 } else { Lanes::ZERO };
-                let entry = t.ss * e[i] * e[j]
-                    + t.us * 2.0 * (e[i] * p[j] + e[j] * p[i])
-                    + t.uu * (4.0 * p[i] * p[j])
-                    + diagonal;
-                rows.column_mut(column).iter_mut().zip(entry.to_array()).for_each(|(value, v)| *value = self.scale * v);
-            }
-        }
-        rows
-    }
-
-    /// The lead field around a position, for the fit.
-    pub fn local(&self, position: Vec3) -> Local<'_> {
-        self.local_by(position, self.images.as_ref(), 2)
-    }
-
-    /// By images or, without, by the series; derivatives of the lead field up to this order, 0 or 2.
-    fn local_by(&self, position: Vec3, images: Option<&Images>, order: usize) -> Local<'_> {
-        let u = position.dot(position);
-        let terms = if images.is_some() { 0 } else { self.series.terms(u.sqrt(), order) };
-        let potential = |block: &Block| {
-            let s = along(block, position);
-            match images {
-                Some(images) if order == 0 => images.potential::<false>(u, s),
-                Some(images) => images.potential::<true>(u, s),
-                None => self.series.potential(terms, u, s),
-            }
-        };
-        Local { position, blocks: &self.blocks, potentials: self.blocks.iter().map(potential).collect() }
-    }
-
-    fn matrix(&self, local: &Local) -> Array2<f64> {
-        let mut rows = Array2::zeros((self.count(), 3));
-        for (mut rows, lead) in rows.axis_chunks_iter_mut(Axis(0), WIDTH).zip(local.leads()) {
-            for (axis, lead) in lead.into_iter().enumerate() {
-                rows.column_mut(axis).iter_mut().zip(lead.to_array()).for_each(|(value, v)| *value = self.scale * v);
+                let diagonal = if i == j { t.u * two } else { Double::default() };
+                let mixed = t.us * two * (e[i] * p[j] + e[j] * p[i]);
+                let entry = t.ss * e[i] * e[j] + mixed + t.uu * (two * two * p[i] * p[j]) + diagonal;
+                fill(rows.column_mut(column), entry, self.scale);
             }
         }
         rows
     }
 }
 
-impl Local<'_> {
-    /// The lead field on the unit sphere, 2Φᵤ p + Φₛ e, block by block.
-    pub(crate) fn leads(&self) -> impl Iterator<Item = [Lanes; 3]> {
-        let p = self.position;
-        self.blocks
-            .iter()
-            .zip(&self.potentials)
-            .map(move |(e, potential)| [0, 1, 2].map(|axis| potential.s * e[axis] + potential.u * (2.0 * p[axis])))
-    }
-
-    /// Directions and derivatives of Φ, block by block.
-    pub(crate) fn terms(&self) -> impl Iterator<Item = (&Block, Terms)> {
-        let u = self.position.dot(self.position);
-        self.blocks
-            .iter()
-            .zip(&self.potentials)
-            .map(move |(e, potential)| (e, potential.terms(u, along(e, self.position))))
-    }
-}
-
-fn in_blocks(directions: &[Vec3]) -> Vec<Block> {
-    let [x, y, z] = [0, 1, 2].map(|axis| blocks(&directions.iter().map(|e| e[axis]).collect::<Vec<_>>()));
-    x.into_iter().zip(y).zip(z).map(|((x, y), z)| [x, y, z]).collect()
-}
-
-/// The scalar products of a block's directions with a vector.
-#[inline]
-pub(crate) fn along(block: &Block, vector: Vec3) -> Lanes {
-    block[0] * vector[0] + block[1] * vector[1] + block[2] * vector[2]
+/// Writes as many lanes as there is room for.
+fn fill(mut column: ndarray::ArrayViewMut1<f64>, lanes: Double, scale: f64) {
+    let mut values = [0.0; Double::WIDTH];
+    lanes.unpack(&mut values);
+    column.iter_mut().zip(values).for_each(|(value, lane)| *value = scale * lane);
 }
 
 #[cfg(test)]

@@ -8,14 +8,16 @@
 //! - [`Series`]: the infinite sum of Legendre terms, cut off by a bound of its tail; the measure of all else.
 //! - [`Images`]: a few image sources whose strengths are solved for, with a proven bound of their error; quick.
 
+mod field;
 mod images;
 mod lead_field;
 mod potential;
 mod series;
 
+pub(crate) use field::{Field, along};
 pub use images::Images;
-pub(crate) use lead_field::along;
-pub use lead_field::{LeadField, Local};
+pub use lead_field::LeadField;
+pub(crate) use potential::Potential;
 pub use series::Series;
 
 /// Largest eccentricity (distance from the centre over the radius of the innermost shell) that sources may have.
@@ -25,3 +27,7 @@ pub const MAX_ECCENTRICITY: f64 = 0.98;
 /// for a head. A tangential dipole reaches at least a third of that value (2 / 3^1.5 = 0.385 in the limit of a flat scalp,
 /// 0.34 the least seen over 306 heads), so that no error exceeds 1e-8 of the largest value that it belongs to.
 pub const QUICK_TOLERANCE: f64 = 3e-9;
+
+/// The same for searches, which need starts but no digits. Where eight images do not reach it, more of the starts are
+/// refined with all digits.
+const ROUGH_TOLERANCE: f64 = 1e-3;

@@ -72,25 +72,26 @@ impl Series {
     ///
     /// With Dₙ, Eₙ, Fₙ the first three derivatives of Hₙ by s, the derivative by u of each is −½ of the next one of
     /// degree n − 1, for example ∂Hₙ/∂u = −½ Dₙ₋₁; and Dₙ = u Dₙ₋₂ + (2n − 1) Hₙ₋₁, likewise Eₙ and Fₙ.
-    pub(super) fn potential(&self, terms: usize, u: f64, s: Lanes) -> Potential {
-        let zero = Lanes::ZERO;
+    pub(super) fn potential<L: Lanes>(&self, terms: usize, u: L, s: L) -> Potential<L> {
+        let zero = L::default();
         let mut sum = Potential::default();
         // [degree n − 1, degree n − 2] of H, D, E, F; F once more for n − 3.
-        let (mut h, mut d, mut e, mut f) = ([Lanes::ONE, zero], [zero; 2], [zero; 2], [zero; 2]);
+        let (mut h, mut d, mut e, mut f) = ([L::splat(1.0), zero], [zero; 2], [zero; 2], [zero; 2]);
         let mut f3 = zero;
         for (n, &gain) in self.gains.iter().enumerate().skip(1).take(terms) {
             let n = n as f64;
-            let odd = 2.0 * n - 1.0;
-            let next_h = (s * h[0] * odd - h[1] * ((n - 1.0) * u)) / n;
+            let odd = L::splat(2.0 * n - 1.0);
+            let next_h = (s * h[0] * odd - h[1] * (L::splat(n - 1.0) * u)) / L::splat(n);
             let next_d = d[1] * u + h[0] * odd;
             let next_e = e[1] * u + d[0] * odd;
             let next_f = f[1] * u + e[0] * odd;
+            let [gain, half, quarter, eighth] = [1.0, -0.5, 0.25, -0.125].map(|share| L::splat(share * gain));
             sum.s += next_d * gain;
-            sum.u -= d[0] * (0.5 * gain);
-            sum.us -= e[0] * (0.5 * gain);
-            sum.uu += e[1] * (0.25 * gain);
-            sum.uus += f[1] * (0.25 * gain);
-            sum.uuu -= f3 * (0.125 * gain);
+            sum.u += d[0] * half;
+            sum.us += e[0] * half;
+            sum.uu += e[1] * quarter;
+            sum.uus += f[1] * quarter;
+            sum.uuu += f3 * eighth;
             (h, d, e) = ([next_h, h[0]], [next_d, d[0]], [next_e, e[0]]);
             f3 = f[1];
             f = [next_f, f[0]];

@@ -1,46 +1,103 @@
 //! Several numbers at once in wide registers, with sums in a written order.
 
-use wide::{f32x8, f64x4};
+use core::fmt::Debug;
+use core::ops::{Add, AddAssign, Div, Mul, Neg, Sub};
 
-/// Four numbers that are computed with alike in wide registers. Lanes never mix, except in [`sum`] in a written order;
-/// hence the width of the registers changes no bit.
-pub type Lanes = f64x4;
+/// Numbers of double precision: all that is answered.
+pub type Double = wide::f64x2;
 
-/// Numbers side by side in [`Lanes`].
-pub const WIDTH: usize = 4;
+/// Numbers of single precision: for searches only.
+pub type Single = wide::f32x4;
+
+/// A register of numbers that are computed with alike. Lanes never mix, except in [`Lanes::sum`] in a written order;
+/// hence what the machine makes of a register changes no bit.
+pub trait Lanes:
+    Copy
+    + Debug
+    + Default
+    + Add<Output = Self>
+    + AddAssign
+    + Sub<Output = Self>
+    + Mul<Output = Self>
+    + Div<Output = Self>
+    + Neg<Output = Self>
+{
+    /// Numbers side by side.
+    const WIDTH: usize;
+
+    /// The same number in every lane.
+    fn splat(value: f64) -> Self;
+
+    /// At most so many numbers as there are lanes; the rest are zero.
+    fn pack(values: &[f64]) -> Self;
+
+    /// Square roots, correctly rounded.
+    fn sqrt(self) -> Self;
+
+    /// The sum of the lanes.
+    fn sum(self) -> f64;
+
+    /// Writes the first lanes.
+    fn unpack(self, values: &mut [f64]);
+}
+
+impl Lanes for Double {
+    const WIDTH: usize = 2;
+
+    #[inline(always)]
+    fn splat(value: f64) -> Self {
+        Self::new([value; 2])
+    }
+
+    fn pack(values: &[f64]) -> Self {
+        Self::new(core::array::from_fn(|lane| values.get(lane).copied().unwrap_or(0.0)))
+    }
+
+    #[inline(always)]
+    fn sqrt(self) -> Self {
+        self.sqrt()
+    }
+
+    #[inline(always)]
+    fn sum(self) -> f64 {
+        let [a, b] = self.to_array();
+        a + b
+    }
+
+    fn unpack(self, values: &mut [f64]) {
+        values.iter_mut().zip(self.to_array()).for_each(|(value, lane)| *value = lane);
+    }
+}
+
+impl Lanes for Single {
+    const WIDTH: usize = 4;
+
+    #[inline(always)]
+    fn splat(value: f64) -> Self {
+        Self::new([value as f32; 4])
+    }
+
+    fn pack(values: &[f64]) -> Self {
+        Self::new(core::array::from_fn(|lane| values.get(lane).map_or(0.0, |value| *value as f32)))
+    }
+
+    #[inline(always)]
+    fn sqrt(self) -> Self {
+        self.sqrt()
+    }
+
+    #[inline(always)]
+    fn sum(self) -> f64 {
+        let [a, b, c, d] = self.to_array();
+        f64::from((a + b) + (c + d))
+    }
+
+    fn unpack(self, values: &mut [f64]) {
+        values.iter_mut().zip(self.to_array()).for_each(|(value, lane)| *value = f64::from(lane));
+    }
+}
 
 /// Numbers in blocks, the last one filled up with zeros.
-pub fn blocks(values: &[f64]) -> Vec<Lanes> {
-    let block = |chunk: &[f64]| Lanes::new(core::array::from_fn(|lane| chunk.get(lane).copied().unwrap_or(0.0)));
-    values.chunks(WIDTH).map(block).collect()
-}
-
-/// The sum of the lanes.
-#[inline]
-pub fn sum(lanes: Lanes) -> f64 {
-    let [a, b, c, d] = lanes.to_array();
-    (a + b) + (c + d)
-}
-
-/// Scalar product of two equally long rows of blocks.
-#[inline]
-pub fn dot(a: &[Lanes], b: &[Lanes]) -> f64 {
-    sum(a.iter().zip(b).fold(Lanes::ZERO, |sum, (x, y)| sum + *x * *y))
-}
-
-/// Eight numbers of single precision, for searches only.
-pub type NarrowLanes = f32x8;
-
-/// The same for [`NarrowLanes`].
-pub fn narrow_blocks(values: &[f64]) -> Vec<NarrowLanes> {
-    let lane = |value: Option<&f64>| value.map_or(0.0, |value| *value as f32);
-    values.chunks(8).map(|chunk| NarrowLanes::new(core::array::from_fn(|k| lane(chunk.get(k))))).collect()
-}
-
-/// The same for [`NarrowLanes`].
-#[inline]
-pub fn narrow_dot(a: &[NarrowLanes], b: &[NarrowLanes]) -> f32 {
-    let sum = a.iter().zip(b).fold(NarrowLanes::ZERO, |sum, (x, y)| sum + *x * *y);
-    let [a, b, c, d, e, f, g, h] = sum.to_array();
-    ((a + b) + (c + d)) + ((e + f) + (g + h))
+pub fn blocks<L: Lanes>(values: &[f64]) -> Vec<L> {
+    values.chunks(L::WIDTH).map(L::pack).collect()
 }

@@ -12,10 +12,10 @@ mod vec3;
 
 pub use assignment::assignment;
 pub use cholesky::Cholesky;
-pub use lanes::Lanes;
+pub use lanes::{Double, Lanes, Single};
 pub use least_squares::least_squares;
 pub use rank::rank;
 pub use resample::{Resampler, select};
 pub use sum::{centre, dot, mean};
-pub use symmetric::{Eigen, Symmetric3};
+pub use symmetric::{Eigen, Factor3, Symmetric3};
 pub use vec3::Vec3;

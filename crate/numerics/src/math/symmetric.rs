@@ -38,21 +38,17 @@ impl Symmetric3 {
         Vec3(self.rows.map(|row| Vec3(row).dot(v)))
     }
 
-    /// Solves A x = b by Cholesky factors; `None` unless A is positive definite.
-    pub fn solve(&self, b: Vec3) -> Option<Vec3> {
+    /// Cholesky factors (Golub & Van Loan, Matrix Computations, §4.2); `None` unless A is positive definite.
+    #[inline]
+    pub fn factor(&self) -> Option<Factor3> {
         let a = &self.rows;
-        let l00 = positive_root(a[0][0])?;
-        let l10 = a[1][0] / l00;
-        let l20 = a[2][0] / l00;
-        let l11 = positive_root(a[1][1] - l10 * l10)?;
-        let l21 = (a[2][1] - l20 * l10) / l11;
-        let l22 = positive_root(a[2][2] - l20 * l20 - l21 * l21)?;
-        let y0 = b[0] / l00;
-        let y1 = (b[1] - l10 * y0) / l11;
-        let y2 = (b[2] - l20 * y0 - l21 * y1) / l22;
-        let x2 = y2 / l22;
-        let x1 = (y1 - l21 * x2) / l11;
-        Some(Vec3::new((y0 - l10 * x1 - l20 * x2) / l00, x1, x2))
+        let over_root = |value: f64| (value > 0.0 && value.is_finite()).then(|| 1.0 / value.sqrt());
+        let d0 = over_root(a[0][0])?;
+        let (l10, l20) = (a[1][0] * d0, a[2][0] * d0);
+        let d1 = over_root(a[1][1] - l10 * l10)?;
+        let l21 = (a[2][1] - l20 * l10) * d1;
+        let d2 = over_root(a[2][2] - l20 * l20 - l21 * l21)?;
+        Some(Factor3 { over_diagonal: [d0, d1, d2], below: [l10, l20, l21] })
     }
 
     /// Eigenvalues and eigenvectors by cyclic Jacobi rotations (Jacobi 1846; Golub & Van Loan, Matrix Computations, §8.5).
@@ -93,8 +89,25 @@ impl Symmetric3 {
     }
 }
 
-fn positive_root(value: f64) -> Option<f64> {
-    (value > 0.0 && value.is_finite()).then(|| value.sqrt())
+/// The lower triangle L of A = L Lᵀ.
+#[derive(Clone, Copy, Debug)]
+pub struct Factor3 {
+    over_diagonal: [f64; 3],
+    below: [f64; 3],
+}
+
+impl Factor3 {
+    /// Solves A x = b.
+    #[inline]
+    pub fn solve(&self, b: Vec3) -> Vec3 {
+        let ([d0, d1, d2], [l10, l20, l21]) = (self.over_diagonal, self.below);
+        let y0 = b[0] * d0;
+        let y1 = (b[1] - l10 * y0) * d1;
+        let y2 = (b[2] - l20 * y0 - l21 * y1) * d2;
+        let x2 = y2 * d2;
+        let x1 = (y1 - l21 * x2) * d1;
+        Vec3::new((y0 - l10 * x1 - l20 * x2) * d0, x1, x2)
+    }
 }
 
 #[cfg(test)]
@@ -110,8 +123,8 @@ mod tests {
             assert!((left - e.vectors[i] * e.values[i]).norm() < 1e-14);
         }
         assert!(e.values[0] <= e.values[1] && e.values[1] <= e.values[2]);
-        let x = a.solve(Vec3::new(1.0, -2.0, 0.5)).unwrap();
+        let x = a.factor().unwrap().solve(Vec3::new(1.0, -2.0, 0.5));
         assert!((a.apply(x) - Vec3::new(1.0, -2.0, 0.5)).norm() < 1e-14);
-        assert!(Symmetric3::default().solve(Vec3::ZERO).is_none());
+        assert!(Symmetric3::default().factor().is_none());
     }
 }
