@@ -1,5 +1,5 @@
 // Fits timed through the module, as a script would, in Node and in a browser: start, one map, a decomposition, thousands
-// of maps, long tables.
+// of maps in one worker and in two, long tables. Ratios are to a calibration kernel of the same run, as in the core's bench.
 
 const seconds = (since) => (performance.now() - since) / 1000;
 const ms = (seconds) => `${(1000 * seconds).toFixed(0)} ms`;
@@ -103,13 +103,145 @@ function leavingOut(engine) {
   return `leave one of 71 electrodes out: new fit, sheet and picture ${at(0.5)} ms (median), ${at(0.9)} ms (9 of 10), ${at(1)} ms at most`;
 }
 
-/** Runs it all; every line is told when it is known. */
-export async function bench(openEngine, tell) {
+/** The calibration kernel: two million divisions in sequence. */
+function calibration() {
+  return shortest(() => {
+    let x = 1.5;
+    for (let i = 0; i < 2e6; i++) x = 1 + 1 / x;
+    if (!(x > 1)) throw new Error("the kernel went wrong");
+  });
+}
+
+/** Time of fits, in seconds, in µs a fit, fits a second and calibrations. */
+function told(time, count, unit) {
+  const rate = `${((1e6 * time) / count).toFixed(1)} µs a fit, ${(count / time).toFixed(0)} a second`;
+  return `${ms(time)} (${rate}; a fit is ${(time / count / unit).toFixed(5)} calibrations)`;
+}
+
+/** Numbers alone, warm; `native` is the time of the same code native, without wider registers, in calibrations a fit. */
+function numbers(engine, unit, native) {
+  const study = engine.open(tables(71, 2000).request);
+  const time = shortest(() => study.fits());
+  study.close();
+  const ratio = native > 0 ? `; ${(time / 2000 / unit / native).toFixed(2)} times native` : "";
+  return `71 electrodes, 2000 fits as numbers: ${told(time, 2000, unit)}${ratio}`;
+}
+
+function wholeHead(engine) {
+  const study = engine.open(tables(256, 256).request);
+  const time = shortest(() => {
+    const other = study.with({ head: { radius_mm: 90 } });
+    other.fits();
+    other.close();
+  });
+  study.close();
+  return `256 maps at 256 electrodes with head set-up, warm: ${ms(time)}`;
+}
+
+/** 13 montages of 71 electrodes, 22 decompositions of 71 maps for each. */
+const MONTAGES = 13;
+const MAPS = 22 * 71;
+
+/** Texts of some montages; their chance depends on the number of the montage alone. */
+function montage(number) {
+  state = BigInt(1 + number);
+  const positions = spread(71).map((p) => p.map((v) => v + 1.5 * normal()));
+  const labels = positions.map((_, k) => `E${k + 1}`);
+  return {
+    electrodes: positions.map((p, k) => [labels[k], ...p].join("\t")).join("\n"),
+    maps: table(Array.from({ length: MAPS }, () => map(positions)), labels),
+  };
+}
+
+/**
+ * Reads some montages; what it returns sets up their heads anew, fits all maps and tells how long reports of the first take
+ * besides.
+ */
+export function wholeTable(engine, first, last) {
+  const studies = [];
+  let reading = 0;
+  for (let number = first; number < last; number++) {
+    const request = montage(number);
+    const start = performance.now();
+    studies.push(engine.open(request));
+    reading += seconds(start);
+  }
+  return {
+    reading,
+    fit() {
+      const start = performance.now();
+      for (const study of studies) {
+        const other = study.with({ head: { radius_mm: 90 } });
+        other.fits();
+        other.close();
+      }
+      return seconds(start);
+    },
+    /** Report objects of one montage, fits apart. */
+    reports() {
+      const fitted = timed(() => studies[0].fits());
+      return timed(() => studies[0].fitWithin(0, Infinity)) - fitted;
+    },
+  };
+}
+
+function timed(work) {
+  const start = performance.now();
+  work();
+  return seconds(start);
+}
+
+/** The table in one worker and in two; a worker answers `[first, last]` when it has read, and "fit" when it has fitted. */
+async function table20306(worker, unit, tell) {
+  const times = [];
+  for (const count of [1, 2]) {
+    const workers = Array.from({ length: count }, worker);
+    const ends = workers.map((_, k) => Math.round((MONTAGES * k) / count)).concat(MONTAGES);
+    const read = await Promise.all(workers.map((one, k) => one.ask([ends[k], ends[k + 1]])));
+    let best = Infinity;
+    for (let run = 0; run < 3; run++) {
+      const start = performance.now();
+      await Promise.all(workers.map((one) => one.ask("fit")));
+      best = Math.min(best, seconds(start));
+    }
+    times.push(best);
+    tell(`13 × 22 × 71 maps, head set-up and fits in ${count} ${count === 1 ? "worker" : "workers"}: ${told(best, MONTAGES * MAPS, unit)}`);
+    if (count === 1) {
+      const reports = await workers[0].ask("reports");
+      tell(`reading them: ${ms(read[0])}; report objects: ${ms(reports * MONTAGES)}`);
+    }
+    for (const one of workers) one.end();
+  }
+  tell(`two workers against one: ${(times[0] / times[1]).toFixed(2)} times as quick`);
+}
+
+/** What a worker answers. */
+export function answerer(engine) {
+  let work = null;
+  return (question) => {
+    if (question === "fit") return work.fit();
+    if (question === "reports") return work.reports();
+    work = wholeTable(engine, ...question);
+    work.fit();
+    return work.reading;
+  };
+}
+
+/**
+ * Runs it all; every line is told when it is known.
+ * @param worker makes a worker: `{ ask(question): Promise, end() }`
+ * @param native calibrations a fit of the native code, 0 if unknown
+ */
+export async function bench(openEngine, tell, worker, native) {
   const start = performance.now();
   const engine = await openEngine();
   engine.program();
   tell(`start: ${ms(seconds(start))}`);
+  const unit = calibration();
+  tell(`calibration kernel: ${(1000 * unit).toFixed(2)} ms`);
   const works = [
+    () => numbers(engine, unit, native),
+    () => wholeHead(engine),
     ...[[32, 2000], [71, 71], [71, 2000], [128, 2000], [256, 1000]].map((sizes) => () => fits(engine, ...sizes)),
     ...[[256, 1], [512, 512]].map((sizes) => () => reading(engine, ...sizes)),
     () => leavingOut(engine),
@@ -119,11 +251,28 @@ export async function bench(openEngine, tell) {
     await new Promise((resume) => setTimeout(resume));
     tell(work());
   }
+  await table20306(worker, unit, tell);
 }
 
 if (typeof process !== "undefined") {
   const { pathToFileURL } = await import("node:url");
+  const { Worker, isMainThread, parentPort } = await import("node:worker_threads");
   const dist = process.env.INWARD_DIST ?? new URL("../target/dist", import.meta.url).pathname;
   const { openEngine } = await import(pathToFileURL(`${dist}/engine/inward.mjs`).href);
-  await bench(openEngine, console.log);
+  if (isMainThread) {
+    const worker = () => {
+      const thread = new Worker(new URL(import.meta.url));
+      const ask = (question) =>
+        new Promise((resolve, reject) => {
+          thread.once("message", resolve);
+          thread.once("error", reject);
+          thread.postMessage(question);
+        });
+      return { ask, end: () => thread.terminate() };
+    };
+    await bench(openEngine, console.log, worker, Number(process.env.INWARD_NATIVE_FIT ?? 0));
+  } else {
+    const answer = answerer(await openEngine());
+    parentPort.on("message", (question) => parentPort.postMessage(answer(question)));
+  }
 }

@@ -80,22 +80,22 @@ fn check(fitter: &Fitter, search: &MultiStart, map: &Mixture) -> (f64, Stopped) 
 
 #[test]
 fn none_of_the_mixed_maps_is_worse_than_a_dense_search_at_19_electrodes() {
-    compare(19, 270, 19);
+    compare(19, 504, 19);
 }
 
 #[test]
 fn none_of_the_mixed_maps_is_worse_than_a_dense_search_at_32_electrodes() {
-    compare(32, 270, 32);
+    compare(32, 504, 32);
 }
 
 #[test]
 fn none_of_the_mixed_maps_is_worse_than_a_dense_search_at_71_electrodes() {
-    compare(71, 270, 71);
+    compare(71, 504, 71);
 }
 
 #[test]
 fn none_of_the_mixed_maps_is_worse_than_a_dense_search_at_128_electrodes() {
-    compare(128, 270, 128);
+    compare(128, 504, 128);
 }
 
 #[test]

@@ -19,21 +19,85 @@ fn main() {
         let p = Vec3::new(0.2, -0.3, 0.6);
         row(electrodes, "lead field, series", unit, 50, || drop(black_box(field.exact(black_box(p)))));
         row(electrodes, "lead field, images", unit, 2000, || drop(black_box(field.quick(black_box(p)))));
-        row(electrodes, "head set-up with grid", unit, 3, || {
-            drop(black_box(Fitter::new(LeadField::new(&Shells::standard(), 88.0, directions.clone()))));
-        });
+        row(electrodes, "head set-up with grid", unit, 3, || drop(black_box(fitter(&directions))));
         let fitter = Fitter::new(field);
         let maps = maps(&fitter, 60);
-        let fits = row(electrodes, "60 fits", unit, 3, || {
-            let maps: Vec<&[f64]> = maps.iter().map(|map| &map[..]).collect();
-            maps.chunks(inward_core::fit::BATCH).for_each(|batch| drop(black_box(fitter.fit_batch(batch))));
-        });
+        let fits = row(electrodes, "60 fits", unit, 3, || fit_all(&fitter, &maps));
         println!(
             "{electrodes:4} electrodes  {:.0} fits/s; {images} images, error at most {bound:.1e}",
             60.0 / fits.as_secs_f64()
         );
     }
+    numbers(unit);
+    whole_table(unit);
+    let (directions, maps) = invented(0.0, 256, 256);
+    let time = shortest(|| set_up_and_fit(&directions, &maps));
+    println!("256 maps at 256 electrodes with head set-up: {:.1} ms", time.as_secs_f64() * 1e3);
     picture(unit);
+}
+
+fn told(time: Duration, count: usize, unit: Duration) -> String {
+    let (seconds, fits) = (time.as_secs_f64(), count as f64);
+    let (each, rate) = (1e6 * seconds / fits, fits / seconds);
+    let calibrations = seconds / fits / unit.as_secs_f64();
+    format!("{:.0} ms ({each:.1} µs a fit, {rate:.0} a second; a fit is {calibrations:.5} calibrations)", 1e3 * seconds)
+}
+
+/// The prepared search, many maps; what the module is compared to reads the last line.
+fn numbers(unit: Duration) {
+    let (directions, maps) = invented(0.0, 71, 2000);
+    let fitter = fitter(&directions);
+    let time = shortest(|| fit_all(&fitter, &maps));
+    println!("71 electrodes, 2000 fits as numbers: {}", told(time, maps.len(), unit));
+    println!("calibrations a fit: {:.7}", time.as_secs_f64() / maps.len() as f64 / unit.as_secs_f64());
+}
+
+/// 13 montages of 71 electrodes, 22 decompositions of 71 maps for each: heads set up and maps fitted.
+fn whole_table(unit: Duration) {
+    let montages: Vec<_> = (0..13).map(|k| invented(f64::from(k), 71, 22 * 71)).collect();
+    let times = [1usize, 2].map(|threads| {
+        let time = shortest(|| {
+            std::thread::scope(|scope| {
+                for part in montages.chunks(13usize.div_ceil(threads)) {
+                    scope.spawn(|| part.iter().for_each(|(directions, maps)| set_up_and_fit(directions, maps)));
+                }
+            });
+        });
+        println!("13 × 22 × 71 maps, head set-up and fits, threads: {threads}: {}", told(time, 13 * 22 * 71, unit));
+        time.as_secs_f64()
+    });
+    println!("two threads against one: {:.2} times as quick", times[0] / times[1]);
+}
+
+/// Electrodes of one of many caps, and mixed maps on them.
+fn invented(turn: f64, electrodes: usize, count: usize) -> (Vec<Vec3>, Vec<Vec<f64>>) {
+    let (sin, cos) = (libm::sin(turn), libm::cos(turn));
+    let turned = |e: Vec3| Vec3::new(cos * e[0] - sin * e[1], sin * e[0] + cos * e[1], e[2]);
+    let directions: Vec<Vec3> = cap(electrodes).into_iter().map(turned).collect();
+    let maps = maps(&fitter(&directions), count);
+    (directions, maps)
+}
+
+fn fitter(directions: &[Vec3]) -> Fitter {
+    Fitter::new(LeadField::new(&Shells::standard(), 88.0, directions.to_vec()))
+}
+
+fn fit_all(fitter: &Fitter, maps: &[Vec<f64>]) {
+    let maps: Vec<&[f64]> = maps.iter().map(|map| &map[..]).collect();
+    maps.chunks(inward_core::fit::BATCH).for_each(|batch| drop(black_box(fitter.fit_batch(batch))));
+}
+
+fn set_up_and_fit(directions: &[Vec3], maps: &[Vec<f64>]) {
+    fit_all(&fitter(directions), maps);
+}
+
+fn shortest(mut work: impl FnMut()) -> Duration {
+    let pass = |work: &mut dyn FnMut()| {
+        let start = Instant::now();
+        work();
+        start.elapsed()
+    };
+    (0..5).map(|_| pass(&mut work)).min().unwrap_or_default()
 }
 
 /// One map from text to picture.

@@ -2,22 +2,37 @@
 
 use crate::dist::build;
 use crate::tools::Tools;
-use crate::workspace::{Workspace, run};
+use crate::workspace::{Workspace, output, run};
 use anyhow::{Context, Result};
 
-/// Runs the core's example `bench` and the same work through the module in Node and in a browser.
+/// Runs the core's example `bench`, the same work through the module in Node and in a browser, the search for misses, and
+/// the same job in NumPy and SciPy.
 pub fn bench(workspace: &Workspace) -> Result<()> {
     build(workspace)?;
     println!("\nnative");
-    run(workspace.cargo().args(["run", "--release", "--locked", "--package=inward-core", "--example=bench"]))?;
+    let example = |package: &str, name: &str| {
+        let mut cargo = workspace.cargo();
+        cargo.args(["run", "--release", "--locked", "--quiet", &format!("--package={package}"), "--example", name]);
+        cargo
+    };
+    let native = output(&mut example("inward-core", "bench"))?;
+    println!("{native}");
+    let fit = native.lines().find_map(|line| line.strip_prefix("calibrations a fit: ")).unwrap_or("0");
     println!("\nNode");
     let node = Tools::find(workspace).node.context("Node 20 or later is needed; INWARD_NODE may name it")?;
-    run(workspace.command(node).arg("tests/bench.mjs").env("INWARD_DIST", &workspace.dist))?;
+    let mut script = workspace.command(node);
+    run(script.arg("tests/bench.mjs").env("INWARD_DIST", &workspace.dist).env("INWARD_NATIVE_FIT", fit))?;
     println!("\nChromium");
-    for example in ["--example=browser_bench", "--example=page_bench"] {
-        let mut browser = workspace.cargo();
-        browser.args(["run", "--release", "--locked", "--quiet", "--package=inward-tests", example]);
-        run(browser.env("INWARD_DIST", &workspace.dist))?;
+    for name in ["browser_bench", "page_bench"] {
+        let mut browser = example("inward-tests", name);
+        run(browser.env("INWARD_DIST", &workspace.dist).env("INWARD_NATIVE_FIT", fit))?;
+    }
+    println!("\nmisses");
+    run(&mut example("inward-tests", "misses"))?;
+    println!("\nNumPy and SciPy");
+    let mut script = workspace.command("python3");
+    if run(script.arg("tests/reference/scipy_bench.py").env("OMP_NUM_THREADS", "1")).is_err() {
+        println!("not run: it needs python3 with numpy and scipy");
     }
     Ok(())
 }

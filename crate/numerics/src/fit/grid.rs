@@ -5,12 +5,12 @@ use crate::math::{Lanes, Single, Vec3};
 #[derive(Clone, Debug)]
 pub(super) struct Grid {
     points: Vec<Vec3>,
+    /// The same, side by side.
+    groups: Vec<[Single; 3]>,
     /// Four points side by side: for each group and electrode the three orthonormal columns that span the
     /// average-referenced maps of the dipoles at each point. Single precision suffices to choose starts.
     basis: Vec<[Single; 3]>,
     electrodes: usize,
-    /// For each point those that are no starts beside it.
-    neighbours: Vec<Vec<u16>>,
     step: f64,
 }
 
@@ -29,15 +29,20 @@ const WIDTH: usize = <Single as Lanes>::WIDTH;
 /// What the best dipole at each point explains of one map, group by group.
 pub(super) type Explained = Vec<Single>;
 
+/// Where a search begins, and the residual variance there.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct Start {
+    pub position: Vec3,
+    pub left_over: f64,
+}
+
 impl Grid {
     pub(super) fn new(images: &Images<Single>, directions: &[Vec3], reach: f64) -> Self {
         let step = reach / LAYERS as f64;
         let points = points(reach);
         let basis = points.chunks(WIDTH).flat_map(|points| orthonormal(images, directions, points)).collect();
-        let near = |a: Vec3, b: Vec3| (a - b).norm() <= SEPARATION * step;
-        let beside = |a: Vec3| (0u16..).zip(&points).filter(move |&(_, &b)| near(a, b)).map(|(i, _)| i).collect();
-        let neighbours = points.iter().map(|&a| beside(a)).collect();
-        Self { points, basis, electrodes: directions.len(), neighbours, step }
+        let groups = points.chunks(WIDTH).map(side_by_side).collect();
+        Self { points, groups, basis, electrodes: directions.len(), step }
     }
 
     pub(super) fn count(&self) -> usize {
@@ -55,8 +60,8 @@ impl Grid {
         let mut explained = vec![vec![Single::default(); groups]; maps.len()];
         let whole = maps.len() / TOGETHER * TOGETHER;
         let (triples, rest) = maps.split_at(whole);
-        let triples: Vec<Vec<[f32; TOGETHER]>> = triples.chunks_exact(TOGETHER).map(side_by_side).collect();
-        let rest: Vec<Vec<[f32; 1]>> = rest.chunks_exact(1).map(side_by_side).collect();
+        let triples: Vec<Vec<[f32; TOGETHER]>> = triples.chunks_exact(TOGETHER).map(by_electrode).collect();
+        let rest: Vec<Vec<[f32; 1]>> = rest.chunks_exact(1).map(by_electrode).collect();
         for (group, basis) in self.basis.chunks_exact(self.electrodes).enumerate() {
             let mut outs = explained.iter_mut();
             let mut tell = |share: Single| {
@@ -71,29 +76,40 @@ impl Grid {
     }
 
     /// The best points, each away from those before it.
-    pub(super) fn starts(&self, explained: &mut Explained, count: usize) -> Vec<Vec3> {
-        let mut starts = Vec::with_capacity(count);
+    pub(super) fn starts(&self, explained: &mut Explained, count: usize) -> Vec<Start> {
+        let mut starts: Vec<Start> = Vec::with_capacity(count);
         while starts.len() < count {
-            let best = explained.iter().fold(Single::default(), |best, share| best.fast_max(*share));
-            let most = best.to_array().into_iter().fold(0.0f32, f32::max);
+            let most = match starts.last() {
+                Some(start) => self.most_away(explained, start.position),
+                None => explained.iter().fold(Single::ZERO, |most, share| most.fast_max(*share)),
+            };
+            let most = most.to_array().into_iter().fold(0.0f32, f32::max);
             let found = explained.iter().position(|share| share.to_array().contains(&most));
             let Some(group) = found.filter(|_| most > 0.0) else { break };
             let lane = explained[group].to_array().iter().position(|share| *share == most).unwrap_or(0);
-            let index = group * WIDTH + lane;
-            for &near in &self.neighbours[index] {
-                let (group, lane) = (usize::from(near) / WIDTH, usize::from(near) % WIDTH);
-                let mut lanes = explained[group].to_array();
-                lanes[lane] = 0.0;
-                explained[group] = Single::new(lanes);
-            }
-            starts.push(self.points[index]);
+            starts.push(Start { position: self.points[group * WIDTH + lane], left_over: 1.0 - f64::from(most) });
         }
         starts
+    }
+
+    /// Strikes out the points near a start; the largest of the others in each lane.
+    #[inline(never)]
+    fn most_away(&self, explained: &mut Explained, start: Vec3) -> Single {
+        let start = start.0.map(<Single as Lanes>::splat);
+        let apart = SEPARATION * self.step;
+        let apart = <Single as Lanes>::splat(apart * apart);
+        let mut most = Single::ZERO;
+        for (share, point) in explained.iter_mut().zip(&self.groups) {
+            let [x, y, z] = [0, 1, 2].map(|axis| point[axis] - start[axis]);
+            *share &= (x * x + y * y + z * z).simd_gt(apart);
+            most = most.fast_max(*share);
+        }
+        most
     }
 }
 
 /// Values of several maps electrode by electrode.
-fn side_by_side<const MAPS: usize>(maps: &[&[f64]]) -> Vec<[f32; MAPS]> {
+fn by_electrode<const MAPS: usize>(maps: &[&[f64]]) -> Vec<[f32; MAPS]> {
     (0..maps[0].len()).map(|i| core::array::from_fn(|map| maps[map][i] as f32)).collect()
 }
 
@@ -131,31 +147,44 @@ fn points(reach: f64) -> Vec<Vec3> {
     points
 }
 
-/// Orthonormal columns that span the average-referenced columns of the lead field (modified Gram–Schmidt), at up to four
+/// Up to four points side by side.
+fn side_by_side(points: &[Vec3]) -> [Single; 3] {
+    [0, 1, 2].map(|axis| Single::pack(&points.iter().map(|p| p[axis]).collect::<Vec<_>>()))
+}
+
+/// Orthonormal columns that span the average-referenced columns of the lead field (Gram–Schmidt), at up to four
 /// points side by side; zero where there are no more points.
 fn orthonormal(images: &Images<Single>, directions: &[Vec3], points: &[Vec3]) -> Vec<[Single; 3]> {
-    let p = [0, 1, 2].map(|axis| Single::pack(&points.iter().map(|p| p[axis]).collect::<Vec<_>>()));
+    let p = side_by_side(points);
     let present = Single::pack(&vec![1.0; points.len()]);
     let mut rows: Vec<[Single; 3]> =
         directions.iter().map(|&e| images.lead(e, &p).map(|lead| lead * present)).collect();
+    let over_count = <Single as Lanes>::splat(1.0 / directions.len() as f64);
+    let mean = rows.iter().fold([Single::ZERO; 3], |sum, row| add(sum, *row)).map(|sum| sum * over_count);
     for k in 0..3 {
-        let sum = |rows: &[[Single; 3]], term: &dyn Fn(&[Single; 3]) -> Single| {
-            rows.iter().fold(Single::default(), |sum, row| sum + term(row))
-        };
-        let mean = sum(&rows, &|row| row[k]) * <Single as Lanes>::splat(1.0 / directions.len() as f64);
-        rows.iter_mut().for_each(|row| row[k] -= mean);
-        let size = sum(&rows, &|row| row[k] * row[k]);
-        for other in 0..k {
-            let share = sum(&rows, &|row| row[other] * row[k]);
-            rows.iter_mut().for_each(|row| row[k] -= share * row[other]);
+        let mut size = Single::ZERO;
+        let mut shares = [Single::ZERO; 2];
+        for row in &mut rows {
+            row[k] -= mean[k];
+            size += row[k] * row[k];
+            for (j, share) in shares.iter_mut().enumerate().take(k) {
+                *share += row[j] * row[k];
+            }
         }
-        let left = sum(&rows, &|row| row[k] * row[k]);
+        let mut left = Single::ZERO;
+        for row in &mut rows {
+            for (j, share) in shares.iter().enumerate().take(k) {
+                row[k] -= *share * row[j];
+            }
+            left += row[k] * row[k];
+        }
         // What is left of a column that depends on the others is rounding.
-        let factor: [f32; 4] = core::array::from_fn(|lane| {
-            let (size, left) = (size.to_array()[lane], left.to_array()[lane]);
-            if left > 1e-10 * size { 1.0 / left.sqrt() } else { 0.0 }
-        });
-        rows.iter_mut().for_each(|row| row[k] *= Single::new(factor));
+        let factor = (Single::ONE / left.sqrt()) & left.simd_gt(size * <Single as Lanes>::splat(1e-10));
+        rows.iter_mut().for_each(|row| row[k] *= factor);
     }
     rows
+}
+
+fn add(a: [Single; 3], b: [Single; 3]) -> [Single; 3] {
+    [a[0] + b[0], a[1] + b[1], a[2] + b[2]]
 }

@@ -12,7 +12,7 @@ use crate::forward::{Field, LeadField};
 use crate::math::{Single, Vec3, centre, dot, mean};
 use grid::{Explained, Grid};
 use objective::Objective;
-use refine::{DOUBLE, Region, SINGLE, refine};
+use refine::{DOUBLE, Region, SINGLE, least, refine};
 
 /// A fitted dipole, in head coordinates.
 #[derive(Clone, Debug, PartialEq)]
@@ -65,9 +65,8 @@ pub struct Fitter {
 /// Starts that are refined for each map.
 const STARTS: usize = 5;
 
-/// Rough minima that lie at most this much of residual variance above the best are refined with all digits, besides what
-/// the rough lead field may lack.
-const MARGIN: f64 = 1e-4;
+/// Least share of a start's residual variance that is left at the minimum it leads to, unless that is the best one.
+const START_OVER_MINIMUM: f64 = 0.3;
 
 /// Maps that share one pass over the grid.
 pub const BATCH: usize = 16;
@@ -116,16 +115,18 @@ impl Fitter {
         let starts = self.grid.starts(&mut explained, STARTS);
         let mut surface = Objective::new(&self.rough, map);
         let mut minima: Vec<Fit> = Vec::with_capacity(STARTS);
-        for &start in &starts {
-            minima.extend(refine(&mut surface, start, region, SINGLE, &minima));
+        for start in &starts {
+            // The grid is so dense that no minimum lies far below the points around it.
+            if START_OVER_MINIMUM * start.left_over <= least(&minima) + SINGLE.slack {
+                minima.extend(refine(&mut surface, start.position, region, SINGLE, &minima));
+            }
         }
-        let best = minima.iter().fold(f64::INFINITY, |best, minimum| best.min(minimum.residual_variance));
-        let margin = MARGIN + 4.0 * self.field.rough_images().error_bound();
-        let near = minima.iter().filter(|minimum| minimum.residual_variance <= best + margin).map(|m| m.position);
+        let most = least(&minima) + SINGLE.slack + 4.0 * self.field.rough_images().error_bound();
+        let near = minima.iter().filter(|minimum| minimum.residual_variance <= most).map(|minimum| minimum.position);
         let mut exact = Objective::new(self.field.field(), map);
         let mut fits: Vec<Fit> = Vec::with_capacity(1);
         // Without a rough minimum the starts themselves.
-        for position in near.chain(starts.iter().copied().filter(|_| minima.is_empty())) {
+        for position in near.chain(starts.iter().map(|start| start.position).filter(|_| minima.is_empty())) {
             fits.extend(refine(&mut exact, position, region, DOUBLE, &fits));
         }
         let best = fits.into_iter().reduce(Fit::better)?;

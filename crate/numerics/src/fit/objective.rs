@@ -258,7 +258,8 @@ impl<L: Lanes> Sums<L> {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::math::{centre, dot};
+    use crate::forward::LeadField;
+    use crate::math::{Double, centre, dot};
     use crate::shells::Shells;
 
     #[test]

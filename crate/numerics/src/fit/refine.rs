@@ -15,13 +15,15 @@ pub(super) struct Precision {
     pub rounding: f64,
     /// Steps below this, in reaches, end the search.
     pub step: f64,
+    /// Minima that lie at most this much above the best one are wanted too.
+    pub slack: f64,
 }
 
 /// Of what is answered.
-pub(super) const DOUBLE: Precision = Precision { rounding: 1e-13, step: 1e-10 };
+pub(super) const DOUBLE: Precision = Precision { rounding: 1e-13, step: 1e-10, slack: 1e-9 };
 
 /// Of searches for starts.
-pub(super) const SINGLE: Precision = Precision { rounding: 3e-7, step: 1e-3 };
+pub(super) const SINGLE: Precision = Precision { rounding: 3e-7, step: 1e-3, slack: 1e-4 };
 
 /// The ball of allowed positions, and the distance of the starts in it.
 #[derive(Clone, Copy, Debug)]
@@ -35,8 +37,8 @@ pub(super) struct Region {
 /// Hessian is that of the plane plus the multiplier −g·n over the radius. The surface is left as soon as the residual
 /// falls inwards.
 ///
-/// The search gives up, with `None`, where it comes upon a minimum that is known already, or if no dipole at the start has a
-/// map of its own.
+/// The search gives up, with `None`, where it comes upon a minimum that is known already or cannot reach a better one than
+/// those, or if no dipole at the start has a map of its own.
 pub(super) fn refine(
     surface: &mut dyn Surface,
     start: Vec3,
@@ -57,6 +59,13 @@ pub(super) fn refine(
         if moved.norm() <= precision.step * reach {
             converged = true;
             break;
+        }
+        let expected = here.residual_variance - predicted;
+        if here.residual_variance - HOPE * predicted > least(known) + precision.slack {
+            return None;
+        }
+        if known.iter().any(|minimum| is_basin_of(minimum, position, target, expected, predicted)) {
+            return None;
         }
         let there = surface.evaluate(target);
         let gained = there.map_or(f64::NEG_INFINITY, |there| here.residual_variance - there.residual_variance);
@@ -95,6 +104,21 @@ fn leads_to(minimum: &Fit, position: Vec3, here: &Evaluation, step: f64) -> bool
     /// In grid steps: about half a millimetre.
     const NEAR: f64 = 0.04;
     (position - minimum.position).norm() <= NEAR * step && here.residual_variance >= minimum.residual_variance
+}
+
+/// A search is hopeless if so many times the decrease that its next step promises does not bring it down to the best known
+/// minimum. With 1.5 none of 13,500 mixed maps was missed, with 1 (and the other limits widened) three.
+const HOPE: f64 = 3.0;
+
+/// The least residual variance of these minima.
+pub(super) fn least(minima: &[Fit]) -> f64 {
+    minima.iter().fold(f64::INFINITY, |least, minimum| least.min(minimum.residual_variance))
+}
+
+/// Whether the next step goes to a known minimum, as far as its aim and the expected residual tell.
+fn is_basin_of(minimum: &Fit, position: Vec3, target: Vec3, expected: f64, predicted: f64) -> bool {
+    let (off, before) = ((target - minimum.position).norm(), (position - minimum.position).norm());
+    off <= 0.3 * before && (expected - minimum.residual_variance).abs() <= 0.7 * predicted
 }
 
 /// The nearest position inside the ball.
