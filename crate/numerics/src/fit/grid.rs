@@ -1,4 +1,5 @@
 use crate::forward::Images;
+use crate::math::lanes::splat3;
 use crate::math::{Lanes, Single, Vec3};
 
 /// Positions over the whole region of sources with the maps that a dipole at each can make.
@@ -95,12 +96,12 @@ impl Grid {
     /// Strikes out the points near a start; the largest of the others in each lane.
     #[inline(never)]
     fn most_away(&self, explained: &mut Explained, start: Vec3) -> Single {
-        let start = start.0.map(<Single as Lanes>::splat);
+        let start = splat3::<Single>(start);
         let apart = SEPARATION * self.step;
         let apart = <Single as Lanes>::splat(apart * apart);
         let mut most = Single::ZERO;
         for (share, point) in explained.iter_mut().zip(&self.groups) {
-            let [x, y, z] = [0, 1, 2].map(|axis| point[axis] - start[axis]);
+            let [x, y, z] = [point[0] - start[0], point[1] - start[1], point[2] - start[2]];
             *share &= (x * x + y * y + z * z).simd_gt(apart);
             most = most.fast_max(*share);
         }
@@ -126,7 +127,11 @@ fn shares<const MAPS: usize>(basis: &[[Single; 3]], maps: &[[f32; MAPS]]) -> [Si
             products[map][2] += *z * value;
         }
     }
-    products.map(|[x, y, z]| x * x + y * y + z * z)
+    let mut shares = [Single::default(); MAPS];
+    for (share, [x, y, z]) in shares.iter_mut().zip(&products) {
+        *share = *x * *x + *y * *y + *z * *z;
+    }
+    shares
 }
 
 /// Concentric layers of golden-angle spirals (Vogel 1979, Math Biosci 44:179–189), the outermost twice as dense: there the

@@ -1,5 +1,5 @@
 use crate::forward::{Field, Potential, along};
-use crate::math::lanes::blocks;
+use crate::math::lanes::{blocks, splat3, sum3};
 use crate::math::{Lanes, Symmetric3, Vec3};
 
 /// Residual variance of one map as a function of the dipole's position, in registers of one precision.
@@ -46,8 +46,12 @@ impl<L: Lanes> Surface for Objective<'_, L> {
         let w = self.first(&at);
         let third = self.second(&at, &w);
         let (vv, av) = self.slopes(&at, mean);
-        let t: [Vec3; 3] = [0, 1, 2].map(|j| Vec3([0, 1, 2].map(|k| av[k][j] - w.matrix.at(j, k))));
-        let solved = t.map(|t| normal.solve(t));
+        let (mut t, mut solved) = ([Vec3::ZERO; 3], [Vec3::ZERO; 3]);
+        for j in 0..3 {
+            t[j] = Vec3::new(av[0][j], av[1][j], av[2][j])
+                - Vec3::new(w.matrix.at(j, 0), w.matrix.at(j, 1), w.matrix.at(j, 2));
+            solved[j] = normal.solve(t[j]);
+        }
         Some(Evaluation {
             residual_variance,
             moment,
@@ -80,8 +84,8 @@ impl<L: Lanes> Place<L> {
         Self {
             position,
             moment,
-            p: position.0.map(L::splat),
-            m: moment.0.map(L::splat),
+            p: splat3(position),
+            m: splat3(moment),
             pm2: L::splat(2.0 * position.dot(moment)),
             u4: L::splat(4.0 * position.dot(position)),
         }
@@ -101,10 +105,10 @@ impl<'a, L: Lanes> Objective<'a, L> {
 
     #[inline(never)]
     fn normal(&self, position: Vec3) -> Normal {
-        let p2 = position.0.map(|c| L::splat(2.0 * c));
+        let p2 = splat3(position * 2.0);
         let (mut sum, mut squares, mut right) = ([L::default(); 3], [L::default(); 6], [L::default(); 3]);
         for ((e, t), &d) in self.field.blocks().iter().zip(&self.potentials).zip(&self.map) {
-            let a: [L; 3] = core::array::from_fn(|i| t.s * e[i] + t.u * p2[i]);
+            let a = lead(e, t, &p2);
             for i in 0..3 {
                 sum[i] += a[i];
                 right[i] += a[i] * d;
@@ -112,8 +116,8 @@ impl<'a, L: Lanes> Objective<'a, L> {
             add_squares(&mut squares, &a, &a);
         }
         let count = self.field.count() as f64;
-        let mean = Vec3(sum.map(|sum| sum.sum() / count));
-        Normal { mean, matrix: less_means(squares, mean, count), right: Vec3(right.map(L::sum)) }
+        let mean = sum3(&sum) * (1.0 / count);
+        Normal { mean, matrix: less_means(&squares, mean, count), right: sum3(&right) }
     }
 
     /// What the dipole leaves over, and the sum of its squares.
@@ -172,16 +176,19 @@ impl<'a, L: Lanes> Objective<'a, L> {
     #[inline(never)]
     fn slopes(&self, at: &Place<L>, mean: Vec3) -> (Symmetric3, [[f64; 3]; 3]) {
         let two = L::splat(2.0);
-        let p2 = at.p.map(|c| c * two);
+        let p2 = splat3(at.position * 2.0);
         let (mut sum, mut squares, mut products) = ([L::default(); 3], [L::default(); 6], [[L::default(); 3]; 3]);
         for (e, t) in self.field.blocks().iter().zip(&self.potentials) {
-            let a: [L; 3] = core::array::from_fn(|i| t.s * e[i] + t.u * p2[i]);
+            let a = lead(e, t, &p2);
             let t = t.terms(at.u4, along(e, &at.p));
             let em = along(e, &at.m);
             let along_e = t.ss * em + t.us * at.pm2;
             let along_p = (t.us * em + t.uu * at.pm2) * two;
             let along_m = t.u * two;
-            let v: [L; 3] = core::array::from_fn(|j| along_e * e[j] + along_p * at.p[j] + along_m * at.m[j]);
+            let mut v = [L::default(); 3];
+            for j in 0..3 {
+                v[j] = along_e * e[j] + along_p * at.p[j] + along_m * at.m[j];
+            }
             for j in 0..3 {
                 sum[j] += v[j];
                 for k in 0..3 {
@@ -191,31 +198,44 @@ impl<'a, L: Lanes> Objective<'a, L> {
             add_squares(&mut squares, &v, &v);
         }
         let count = self.field.count() as f64;
-        let v = Vec3(sum.map(|sum| sum.sum() / count));
-        let products =
-            core::array::from_fn(|k| core::array::from_fn(|j| products[k][j].sum() - count * mean[k] * v[j]));
-        (less_means(squares, v, count), products)
+        let v = sum3(&sum) * (1.0 / count);
+        let mut av = [[0.0; 3]; 3];
+        for k in 0..3 {
+            for j in 0..3 {
+                av[k][j] = products[k][j].sum() - count * mean[k] * v[j];
+            }
+        }
+        (less_means(&squares, v, count), av)
     }
 }
 
-/// Rows and columns of the upper triangle.
-const UPPER: [(usize, usize); 6] = [(0, 0), (0, 1), (0, 2), (1, 1), (1, 2), (2, 2)];
+/// The lead field on the unit sphere, Φₛ e + 2Φᵤ p.
+#[inline(always)]
+fn lead<L: Lanes>(e: &[L; 3], t: &Potential<L>, p2: &[L; 3]) -> [L; 3] {
+    [t.s * e[0] + t.u * p2[0], t.s * e[1] + t.u * p2[1], t.s * e[2] + t.u * p2[2]]
+}
 
+/// Adds a bᵀ, of which the upper triangle is kept.
 #[inline(always)]
 fn add_squares<L: Lanes>(sums: &mut [L; 6], a: &[L; 3], b: &[L; 3]) {
-    for (sum, (i, j)) in sums.iter_mut().zip(UPPER) {
-        *sum += a[i] * b[j];
-    }
+    sums[0] += a[0] * b[0];
+    sums[1] += a[0] * b[1];
+    sums[2] += a[0] * b[2];
+    sums[3] += a[1] * b[1];
+    sums[4] += a[1] * b[2];
+    sums[5] += a[2] * b[2];
 }
 
-fn symmetric<L: Lanes>(sums: [L; 6]) -> impl Fn(usize, usize) -> f64 {
-    let sums = sums.map(L::sum);
-    move |i, j| sums[[[0, 1, 2], [1, 3, 4], [2, 4, 5]][i][j]]
+#[inline(always)]
+fn symmetric<L: Lanes>(sums: &[L; 6]) -> [[f64; 3]; 3] {
+    let [xx, xy, xz] = [sums[0].sum(), sums[1].sum(), sums[2].sum()];
+    let [yy, yz, zz] = [sums[3].sum(), sums[4].sum(), sums[5].sum()];
+    [[xx, xy, xz], [xy, yy, yz], [xz, yz, zz]]
 }
 
-fn less_means<L: Lanes>(squares: [L; 6], mean: Vec3, count: f64) -> Symmetric3 {
+fn less_means<L: Lanes>(squares: &[L; 6], mean: Vec3, count: f64) -> Symmetric3 {
     let squares = symmetric(squares);
-    Symmetric3::from_fn(|i, j| squares(i, j) - count * mean[i] * mean[j])
+    Symmetric3::from_fn(|i, j| squares[i][j] - count * mean[i] * mean[j])
 }
 
 /// The coefficients of Σ [α e eᵀ + β (e pᵀ + p eᵀ) + γ p pᵀ + δ 1], lane by lane.
@@ -246,10 +266,10 @@ impl<L: Lanes> Sums<L> {
     }
 
     fn weighed(&self, p: Vec3) -> Weighed {
-        let (ee, e) = (symmetric(self.ee), Vec3(self.e.map(L::sum)));
+        let (ee, e) = (symmetric(&self.ee), sum3(&self.e));
         let (pp, one) = (self.pp.sum(), self.one.sum());
         let matrix = Symmetric3::from_fn(|i, j| {
-            ee(i, j) + e[i] * p[j] + e[j] * p[i] + pp * p[i] * p[j] + if i == j { one } else { 0.0 }
+            ee[i][j] + e[i] * p[j] + e[j] * p[i] + pp * p[i] * p[j] + if i == j { one } else { 0.0 }
         });
         Weighed { matrix, e, pp }
     }
@@ -259,7 +279,7 @@ impl<L: Lanes> Sums<L> {
 mod tests {
     use super::*;
     use crate::forward::LeadField;
-    use crate::math::{Double, centre, dot};
+    use crate::math::{centre, dot};
     use crate::shells::Shells;
 
     #[test]

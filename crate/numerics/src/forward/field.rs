@@ -1,6 +1,6 @@
 use super::potential::Potential;
 use super::{Images, Series};
-use crate::math::lanes::blocks;
+use crate::math::lanes::{blocks, splat3};
 use crate::math::{Lanes, Vec3};
 use std::sync::Arc;
 
@@ -53,11 +53,13 @@ impl<L: Lanes> Field<L> {
     /// derivatives of the lead field need are left out unless `HIGHER`.
     pub(crate) fn potentials<const HIGHER: bool>(&self, position: Vec3, potentials: &mut Vec<Potential<L>>) {
         let distance2 = position.dot(position);
-        let (p, u) = (position.0.map(L::splat), L::splat(distance2));
+        let (p, u) = (splat3(position), L::splat(distance2));
         potentials.clear();
         match &self.source {
             Source::Images(images) => {
-                potentials.extend(self.blocks.iter().map(|e| images.potential::<HIGHER>(u, along(e, &p))));
+                for e in &self.blocks {
+                    potentials.push(images.potential::<HIGHER>(u, along(e, &p)));
+                }
             }
             Source::Series(series) => {
                 let terms = series.terms(distance2.sqrt(), if HIGHER { 2 } else { 0 });

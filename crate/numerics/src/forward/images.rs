@@ -1,6 +1,7 @@
 use super::field::along;
 use super::potential::Potential;
 use super::{MAX_ECCENTRICITY, Series};
+use crate::math::lanes::splat3;
 use crate::math::{Lanes, Vec3, least_squares};
 use crate::shells::Shells;
 
@@ -110,10 +111,10 @@ impl<L: Lanes> Images<L> {
     /// The lead field of one electrode, on the unit sphere, for several positions side by side.
     #[inline(never)]
     pub(crate) fn lead(&self, direction: Vec3, p: &[L; 3]) -> [L; 3] {
-        let e = direction.0.map(L::splat);
+        let e = splat3(direction);
         let t = self.potential::<false>(along(p, p), along(&e, p));
         let twice_u = t.u + t.u;
-        [0, 1, 2].map(|axis| t.s * e[axis] + twice_u * p[axis])
+        [t.s * e[0] + twice_u * p[0], t.s * e[1] + twice_u * p[1], t.s * e[2] + twice_u * p[2]]
     }
 
     /// Derivatives of Φ, from those of a = 1/D and −ln E with E = 1/b = 1 − s + D; the first ones only unless `HIGHER`.

@@ -1,5 +1,6 @@
 //! Several numbers at once in wide registers, with sums in a written order.
 
+use super::Vec3;
 use core::fmt::Debug;
 use core::ops::{Add, AddAssign, Div, Mul, Neg, Sub};
 
@@ -95,6 +96,19 @@ impl Lanes for Single {
     fn unpack(self, values: &mut [f64]) {
         values.iter_mut().zip(self.to_array()).for_each(|(value, lane)| *value = f64::from(lane));
     }
+}
+
+/// A vector in every lane. Written out, as all that is called at each electrode: what takes a closure is not copied into its
+/// caller in the browser's code.
+#[inline(always)]
+pub fn splat3<L: Lanes>(v: Vec3) -> [L; 3] {
+    [L::splat(v[0]), L::splat(v[1]), L::splat(v[2])]
+}
+
+/// The sums of the lanes of three registers.
+#[inline(always)]
+pub fn sum3<L: Lanes>(lanes: &[L; 3]) -> Vec3 {
+    Vec3::new(lanes[0].sum(), lanes[1].sum(), lanes[2].sum())
 }
 
 /// Numbers in blocks, the last one filled up with zeros.

@@ -17,6 +17,7 @@ pub struct Eigen {
 
 impl Symmetric3 {
     /// From a function of row and column, asked for the upper triangle only.
+    #[inline]
     pub fn from_fn(entry: impl Fn(usize, usize) -> f64) -> Self {
         let mut rows = [[0.0; 3]; 3];
         for i in 0..3 {
@@ -29,13 +30,15 @@ impl Symmetric3 {
     }
 
     /// Entry in row `i` and column `j`.
+    #[inline]
     pub fn at(&self, i: usize, j: usize) -> f64 {
         self.rows[i][j]
     }
 
     /// Matrix times vector.
     pub fn apply(&self, v: Vec3) -> Vec3 {
-        Vec3(self.rows.map(|row| Vec3(row).dot(v)))
+        let [x, y, z] = self.rows;
+        Vec3::new(Vec3(x).dot(v), Vec3(y).dot(v), Vec3(z).dot(v))
     }
 
     /// Cholesky factors (Golub & Van Loan, Matrix Computations, §4.2); `None` unless A is positive definite.

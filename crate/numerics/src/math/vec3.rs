@@ -15,6 +15,7 @@ impl Vec3 {
     }
 
     /// Scalar product.
+    #[inline]
     pub fn dot(self, other: Self) -> f64 {
         self.0[0] * other.0[0] + self.0[1] * other.0[1] + self.0[2] * other.0[2]
     }
@@ -26,6 +27,7 @@ impl Vec3 {
     }
 
     /// Euclidean length.
+    #[inline]
     pub fn norm(self) -> f64 {
         self.dot(self).sqrt()
     }
@@ -54,6 +56,7 @@ impl From<Vec3> for [f64; 3] {
 }
 impl Add for Vec3 {
     type Output = Self;
+    #[inline]
     fn add(self, other: Self) -> Self {
         Self([self.0[0] + other.0[0], self.0[1] + other.0[1], self.0[2] + other.0[2]])
     }
@@ -65,24 +68,28 @@ impl AddAssign for Vec3 {
 }
 impl Sub for Vec3 {
     type Output = Self;
+    #[inline]
     fn sub(self, other: Self) -> Self {
         Self([self.0[0] - other.0[0], self.0[1] - other.0[1], self.0[2] - other.0[2]])
     }
 }
 impl Neg for Vec3 {
     type Output = Self;
+    #[inline]
     fn neg(self) -> Self {
         Self([-self.0[0], -self.0[1], -self.0[2]])
     }
 }
 impl Mul<f64> for Vec3 {
     type Output = Self;
+    #[inline]
     fn mul(self, factor: f64) -> Self {
         Self([self.0[0] * factor, self.0[1] * factor, self.0[2] * factor])
     }
 }
 impl Index<usize> for Vec3 {
     type Output = f64;
+    #[inline]
     fn index(&self, index: usize) -> &f64 {
         &self.0[index]
     }
