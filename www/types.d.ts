@@ -417,7 +417,7 @@ interface GlueStudy {
   fitWithin(first: number, milliseconds: number): ReportMap[];
   fits(first: number, last: number): Float64Array;
   /** The same as lines of a table, before `last`. */
-  rowsWithin(first: number, last: number, milliseconds: number): (MapRow | UnfittedMap)[];
+  rowsWithin(first: number, last: number, milliseconds: number): (PackedRow | UnfittedMap)[];
   /** Sizes 8 to 64; null where the electrodes carry no interpolation. */
   thumbnails(indexes: number[], size: number): Thumbnails | null;
   /** Positions are three canonical millimetres for each map, NaN for one that is not fitted. */
@@ -539,6 +539,9 @@ interface MapRow {
   flipped: boolean;
   cells: string[];
 }
+
+/** A row in pieces, for the way out of the engine: its numbers, and its words divided by NUL. */
+type PackedRow = [Float64Array, string];
 
 /** One line of the list of maps. */
 type MapSummary = MapRow | UnfittedMap;

@@ -6,6 +6,7 @@
  */
 
 import { lacksMemory } from "./fault.js";
+import { unpackedRow } from "./row.js";
 
 /** @param {unknown} error @returns {error is Error & Fault} */
 function isDeliberate(error) {
@@ -165,7 +166,8 @@ export function makeEngine(compiled, keeps = true) {
       lend: use,
       matches: (other, own, others) => use((opened) => other.lend((second) => opened.matches(second, own, others))),
       rank: () => use((opened) => opened.rank()),
-      rowsWithin: (first, last, milliseconds) => use((opened) => opened.rowsWithin(first, last, milliseconds)),
+      rowsWithin: (first, last, milliseconds) =>
+        use((opened) => opened.rowsWithin(first, last, milliseconds)).map(unpackedRow),
       thumbnails: (indexes, size) => use((opened) => opened.thumbnails(indexes, size)),
       preamble: () => use((opened) => opened.preamble()),
       sheet: (index) => use((opened) => opened.sheet(index)),

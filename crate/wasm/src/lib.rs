@@ -4,6 +4,7 @@
 mod clock;
 mod compare;
 mod picture;
+mod row;
 mod wire;
 
 use clock::Clock;
@@ -137,11 +138,11 @@ impl Study {
         self.within(first, self.0.count(), milliseconds, |report| plain(&report))
     }
 
-    /// The same as lines of a table, before `last`.
+    /// The same as lines of a table in pieces, before `last`; what cannot be fitted as in the report.
     #[wasm_bindgen(js_name = rowsWithin)]
     pub fn rows_within(&self, first: usize, last: usize, milliseconds: f64) -> Result<Array, JsValue> {
         self.within(first, last.min(self.0.count()), milliseconds, |report| match report {
-            MapReport::Fitted(map) => plain(&self.0.row(&map)),
+            MapReport::Fitted(map) => Ok(row::to_js(&self.0.row(&map))),
             failed => plain(&failed),
         })
     }

@@ -8,7 +8,7 @@ use crate::math::Vec3;
 use serde::Serialize;
 
 /// What a table of maps shows of one of them: numbers to order and draw by, and the same in words.
-#[derive(Clone, Debug, PartialEq, Serialize)]
+#[derive(Clone, Debug, PartialEq)]
 pub struct MapRow {
     /// Its name.
     pub name: String,
