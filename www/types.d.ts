@@ -421,7 +421,7 @@ interface GlueStudy {
   /** Sizes 8 to 64; null where the electrodes carry no interpolation. */
   thumbnails(indexes: number[], size: number): Thumbnails | null;
   /** Positions are three canonical millimetres for each map, NaN for one that is not fitted. */
-  matches(other: GlueStudy, own: Float64Array, others: Float64Array): Matches;
+  matches(other: GlueStudy, own: Float64Array, others: Float64Array, names?: string[]): Matches;
   /** The numerical rank of components, and what is to be said where it is less than their number. */
   rank(): { rank: number | null; note: ReportNote | null };
   assess(index: number, what: string[]): object;
@@ -489,7 +489,7 @@ interface Study {
   fitWithin(first: number, milliseconds: number): ReportMap[];
   rowsWithin(first: number, last: number, milliseconds: number): (MapRow | UnfittedMap)[];
   thumbnails(indexes: number[], size: number): Thumbnails | null;
-  matches(other: Study, own: Float64Array, others: Float64Array): Matches;
+  matches(other: Study, own: Float64Array, others: Float64Array, names?: string[]): Matches;
   rank(): { rank: number | null; note: ReportNote | null };
   /** Lets a call use the glue's study, of the instance that is current. */
   lend<T>(job: (study: GlueStudy) => T): T;
@@ -602,7 +602,7 @@ type WorkerTask =
   | { kind: "sheet"; key: number; index: number }
   | { kind: "thumbnails"; key: number; indexes: number[]; size: number }
   | { kind: "summary"; request: SummaryRequest }
-  | { kind: "matches"; keys: number[]; own: Float64Array; others: Float64Array }
+  | { kind: "matches"; keys: number[]; own: Float64Array; others: Float64Array; names: string[] }
   | { kind: "report"; key: number }
   | { kind: "comparison"; keys: number[]; members: Omit<ComparedStudy, "study">[]; settings: ComparisonSettings }
   | { kind: "close"; key: number };

@@ -592,10 +592,10 @@ test("groups of subjects have intervals, and wrong comparisons are refused by na
     return error;
   };
   for (const [change, common, said] of [
-    [{ name: "x", maps, wrong: 1 }, {}, "`wrong` of the decomposition “x”"],
+    [{ name: "x", maps, wrong: 1 }, {}, "decomposition “x”: A setting was not understood: unknown part `wrong`"],
     [{ maps }, {}, "decomposition 2 has no name"],
-    [{ name: "x", maps, subject: 4 }, {}, "subject.*“x”"],
-    [{ name: "x", maps, information: "much" }, {}, "information.*“x”"],
+    [{ name: "x", maps, subject: 4 }, {}, "“x”.*subject"],
+    [{ name: "x", maps, information: "much" }, {}, "“x”.*information"],
     [{ name: "x", maps, settings: { at: [0.1] } }, {}, "“x”.*settings.at"],
     [{ name: "x", maps, head: { radius: 3 } }, {}, "“x”.*settings.head"],
     [{ name: "x", maps }, { settings: { wrong: 1 } }, "“first”.*settings.wrong"],

@@ -175,6 +175,19 @@ test("what a lost or trapped worker has not told is fitted by another, and nothi
   }
 });
 
+test("a piece that a fresh worker begins again is told once", async () => {
+  const { pool, fit, complete } = fitters(3000);
+  const other = pool.name({ files: [{ name: "b", content: "b" }] });
+  const asked = fit(0);
+  await new Promise((resume) => setTimeout(resume, 15));
+  const unanswered = pool.ask({ kind: "silent", key: other });
+  await new Promise((resume) => setTimeout(resume, 5));
+  pool.giveUp(other);
+  await assert.rejects(unanswered, { code: "given-up" });
+  await asked;
+  complete();
+});
+
 test("maps that end every worker are given up after three tries, and the fault is told", async () => {
   let tries = 0;
   const { fit } = fitters(3000, (_, at) => (at === 1600 ? (tries++, "engine-trap") : undefined));

@@ -72,8 +72,11 @@ fn groups_are_means_over_subjects() {
     assert!(within(x) && within(y));
     assert!(z.low == [None; 3] && z.curve.low.is_none() && z.cells[2].is_empty());
     let curve = &x.curve;
-    let at = curve.rv.iter().rposition(|rv| *rv <= 0.1).unwrap();
-    assert_eq!((curve.share[at], curve.share.last()), (x.share[1].unwrap(), Some(&1.0)));
+    for (threshold, share) in [0.05, 0.10, 0.15].into_iter().zip(&x.share) {
+        let at = curve.rv.iter().position(|rv| *rv == threshold).unwrap();
+        assert_eq!(Some(curve.share[at]), *share, "curve and table agree at {threshold}");
+    }
+    assert_eq!(curve.share.last(), Some(&1.0));
     assert!(curve.rv.is_sorted() && curve.share.is_sorted() && curve.low.as_ref().unwrap().is_sorted());
     let difference = told.differences.iter().find(|one| (one.a, one.b) == (0, 1)).unwrap();
     assert_eq!(difference.subjects, 5);

@@ -164,7 +164,8 @@ export function makeEngine(compiled, keeps = true) {
       },
       fitWithin: (first, milliseconds) => use((opened) => opened.fitWithin(first, milliseconds)),
       lend: use,
-      matches: (other, own, others) => use((opened) => other.lend((second) => opened.matches(second, own, others))),
+      matches: (other, own, others, names) =>
+        use((opened) => other.lend((second) => opened.matches(second, own, others, names))),
       rank: () => use((opened) => opened.rank()),
       rowsWithin: (first, last, milliseconds) =>
         use((opened) => opened.rowsWithin(first, last, milliseconds)).map(unpackedRow),
@@ -186,14 +187,10 @@ export function makeEngine(compiled, keeps = true) {
     compareStudies: (list, settings) =>
       call((current) => {
         const comparison = new current.Comparison();
-        try {
-          for (const { name, subject, information, study } of list) {
-            study.lend((opened) => comparison.add(name, subject, information, opened));
-          }
-          return comparison.finish(settings);
-        } finally {
-          comparison.free();
+        for (const { name, subject, information, study } of list) {
+          study.lend((opened) => comparison.add(name, subject, information, opened));
         }
+        return comparison.finish(settings);
       }),
     summary: (request) => call((current) => current.summary(request)),
     columns: (unit) => call((current) => current.columns(unit)),

@@ -137,7 +137,10 @@ async function warmUpOn(request) {
 
 /** @param {Study} study @returns {OpenedStudy} */
 function openedStudy(study) {
-  return { preamble: study.preamble(), count: study.count };
+  const preamble = study.preamble();
+  const { note } = study.rank();
+  const notes = note === null ? preamble.notes : [...preamble.notes, note];
+  return { preamble: { ...preamble, notes }, count: study.count };
 }
 
 /** @param {Sheet} sheet the rasters are handed over, not copied */
@@ -191,7 +194,7 @@ async function answerTask(message) {
       return self.postMessage({ id, value: workerEngine.summary(message.request) });
     case "matches": {
       const [first, second] = message.keys.map(studyOf);
-      return self.postMessage({ id, value: first.matches(second, message.own, message.others) });
+      return self.postMessage({ id, value: first.matches(second, message.own, message.others, message.names) });
     }
     case "report": {
       const study = studyOf(message.key);

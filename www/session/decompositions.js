@@ -9,6 +9,11 @@ const MIRRORED = ["inputs", "settings", "example", "answer", "failure"];
 /** Settings that go for all decompositions. @type {(keyof PageSettings)[]} */
 export const SHARED = ["head", "exclude", "interpolated", "unusualHead"];
 
+/** The maps of an answer that are fitted under its settings; those after them are of earlier ones. @param {Answer | null | undefined} answer */
+export function freshMaps(answer) {
+  return answer ? answer.maps.slice(0, answer.fitted) : [];
+}
+
 /** @param {number} id @returns {Decomposition} */
 export function emptyDecomposition(id) {
   return {

@@ -219,6 +219,11 @@ export function makeFitting(store, pool, fail) {
     if (run.pending && first !== undefined && "error" in first) throw first.error;
   }
 
+  /** Values of earlier settings do not stand beside new ones for good; the map in view keeps its name. @param {Answer} draft */
+  function forgetEarlier({ maps, fitted, chosen }) {
+    for (let at = fitted; at < maps.length; at++) if (at !== chosen) delete maps[at];
+  }
+
   /** Ends a run. @param {Run} run */
   function finish(run) {
     run.over = true;
@@ -374,6 +379,8 @@ export function makeFitting(store, pool, fail) {
         if (run.over) continue;
         run.over = true;
         if (run.pending) drop(run.id, true);
+        else if (run.draft !== null) forgetEarlier(run.draft);
+        unshown.add(run);
       }
       batch = new Set();
       showMaps();

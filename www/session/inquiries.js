@@ -1,5 +1,7 @@
 /** Questions about what has been fitted: single maps, reports, and several decompositions together. */
 
+import { freshMaps } from "./decompositions.js";
+
 /** @import { Pool } from "../engine/pool/pool.js" */
 /** @import { Fitting } from "./fitting.js" */
 
@@ -102,8 +104,9 @@ export function makeInquiries(store, pool, fail, fitting) {
     async summary(at) {
       const members = store.read().decompositions.flatMap(({ name, subject, information, answer }) => {
         if (answer === null) return [];
-        const rv = answer.maps.map((map) => ("rv" in map ? map.rv : null));
-        const variance = answer.maps.map((map) => ("rv" in map ? map.variance : null));
+        const maps = freshMaps(answer);
+        const rv = maps.map((map) => ("rv" in map ? map.rv : null));
+        const variance = maps.map((map) => ("rv" in map ? map.variance : null));
         const electrodes = answer.preamble.electrodes.filter(({ used }) => used).map(({ label }) => label);
         return [{ name, subject, information, rv, variance, electrodes }];
       });
@@ -121,12 +124,13 @@ export function makeInquiries(store, pool, fail, fitting) {
       const engine = pool();
       if (a === null || b === null || engine === null) return null;
       /** @param {Answer} answer */
-      const positions = ({ maps, count }) => {
-        const all = new Float64Array(3 * count).fill(Number.NaN);
-        maps.forEach((map, at) => "rv" in map && all.set(map.canonical_mm, 3 * at));
+      const positions = (answer) => {
+        const all = new Float64Array(3 * answer.count).fill(Number.NaN);
+        freshMaps(answer).forEach((map, at) => "rv" in map && all.set(map.canonical_mm, 3 * at));
         return all;
       };
-      return engine.ask({ kind: "matches", keys: [a.key, b.key], own: positions(a), others: positions(b) });
+      const names = [first, second].map((id) => store.read().decompositions.find((one) => one.id === id)?.name ?? "");
+      return engine.ask({ kind: "matches", keys: [a.key, b.key], own: positions(a), others: positions(b), names });
     },
 
     /** The whole report of the present answer. @returns {Promise<Blob | null>} */

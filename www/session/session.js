@@ -9,7 +9,7 @@ import { makeSideBySide } from "./side_by_side.js";
 import { makeStore } from "./store.js";
 import { faultOf } from "../engine/fault.js";
 import { pageFault } from "../text/faults.js";
-import { emptyDecomposition, groupedInputs, mirrored, newDecompositions, SHARED } from "./decompositions.js";
+import { emptyDecomposition, entitiesOf, groupedInputs, mirrored, newDecompositions, SHARED } from "./decompositions.js";
 import { heldBytes, isEmpty, namedFiles, NO_INPUTS, placedInputs } from "./inputs.js";
 import { isMisfit, isUnreadable } from "./help.js";
 import { differingSettings, firstLine, FIRST_SETTINGS, isOtherTable, settingsForOther } from "./settings.js";
@@ -183,6 +183,13 @@ export function makeSession() {
     const before = store.read();
     const groups = groupedInputs(given, before.example === null ? before.inputs : NO_INPUTS);
     if (groups.length > 1) return takeSeveral(groups, false);
+    const [own] = groupedInputs(given, before.inputs, 1);
+    const one = before.decompositions.find(({ id }) => id === before.current);
+    const subject = own === undefined ? "" : entitiesOf(own.maps?.name ?? "").subject;
+    // The table of another subject stands beside the others.
+    if (own !== undefined && subject !== "" && one !== undefined && one.subject !== "" && one.subject !== subject) {
+      return takeSeveral([own], true);
+    }
     const { inputs, replaced } = placedInputs(before.example === null ? before.inputs : NO_INPUTS, given);
     exchange(inputs, replaced);
     const { said } = store.read();

@@ -48,6 +48,8 @@ export function makeSideBySide(store, pool, { fitting, step, askChanged, choose 
       const { answer: before } = store.read();
       const same = now.answer !== null && now.answer.key === one.answer?.key;
       store.write(asCurrent({ ...now, answer: now.answer === null ? null : { ...now.answer, sheet: same ? sheet : null } }));
+      // What was given up before its first answer is fitted when it is asked for again.
+      if (store.read().phase === "busy" && !fitting.isPending()) store.write({ phase: fitting.restingPhase() });
       if (before !== null) engine.rest(before.key);
       engine.reorder();
       const { answer } = store.read();
@@ -62,7 +64,9 @@ export function makeSideBySide(store, pool, { fitting, step, askChanged, choose 
     /** @param {number} id @param {string} subject */
     setSubject(id, subject) {
       const whose = subject.trim();
-      alter(id, "subject", ({ name }, others) => ({ subject: whose, name: uniqueName(name, whose, others) }));
+      // A number that told it from another of its former subject is not needed any more.
+      const plain = (/** @type {string} */ name) => name.replace(/ \(\d+\)$/, "");
+      alter(id, "subject", ({ name }, others) => ({ subject: whose, name: uniqueName(plain(name), whose, others) }));
     },
 
     /** A mutual-information reduction that the user has. @param {number} id @param {number | null} information */

@@ -180,6 +180,7 @@ const WORDS = {
   copied: "Copied",
   "copy.failed": "The browser does not allow copying here",
   json: "Download report (JSON)",
+  "shares.json": "Download all decompositions (JSON)",
 
   activation: "Standard deviation of the activation",
   "activation.meaning": "Of this component, in the units that go with its map. With it, the strength is that of one standard deviation and compares between components.",
@@ -402,11 +403,11 @@ export function dipolePlaceText(row, columns, order) {
 
 /**
  * What there is of a decomposition.
- * @param {{ subject: string, count: number, failure: Fault | null, counts: { here: number, fitted: number, within: number } | null, threshold: number }} facts
+ * @param {{ subject: string, count: number, failure: Fault | null, counts: { here: number, fitted: number, within: number } | null, threshold: number, stopped: boolean }} facts
  */
-export function decompositionText({ subject, count, failure, counts, threshold }) {
+export function decompositionText({ subject, count, failure, counts, threshold, stopped }) {
   const parts = subject === "" ? [] : [`subject ${shortName(subject)}`];
-  if (counts === null) return [...parts, word(failure === null ? "state.busy" : "state.failed")].join(" · ");
+  if (counts === null) return [...parts, word(failure !== null ? "state.failed" : stopped ? "state.stopped" : "state.busy")].join(" · ");
   const { here, fitted, within } = counts;
   parts.push(here < count ? `${here.toLocaleString("en-GB")} of ${countText(count, "map")}` : countText(count, "map"));
   if (here > fitted) parts.push(`${(here - fitted).toLocaleString("en-GB")} not fitted`);
@@ -714,7 +715,7 @@ export function dipoleText({ name, rv, nearest_site: site, side }, decomposition
 
 /** @param {Matches} matches */
 export function matchedText({ electrodes, matches }) {
-  return `${matches.length} pairs, by the ${electrodes} electrodes that both use.`;
+  return `${matches.length} ${matches.length === 1 ? "pair" : "pairs"}, by the ${electrodes} electrodes that both use.`;
 }
 
 /**
@@ -730,7 +731,9 @@ export function unmatchedText({ unmatched_a, unmatched_b }, a, b) {
     if (left.length === 0) return [];
     const names = listText(left.map((index) => own?.answer?.maps[index]?.name ?? ""));
     const fewer = (other?.answer?.count ?? 0) < (own?.answer?.count ?? 0);
-    const why = fewer ? `${shortName(other?.name ?? "")} has fewer maps` : "no map is left that could be theirs";
+    const unfitted = left.some((index) => "error" in (own?.answer?.maps[index] ?? {}));
+    const few = fewer ? `${shortName(other?.name ?? "")} has fewer maps` : "no map is left that could be theirs";
+    const why = unfitted ? `${few}, or they have no values to compare` : few;
     return [`Without a partner in ${shortName(other?.name ?? "")}: ${names} (${why}).`];
   });
 }

@@ -179,8 +179,9 @@ export function showAllDipoles(session) {
     if (section.hidden || !section.open) return;
     list();
     const radii = new Set(shown().map(({ decomposition }) => decomposition.answer?.preamble.head.radius_mm));
+    const listed = shown().reduce((sum, { maps }) => sum + maps.filter((map) => "rv" in map).length, 0);
     need("dipoles-count", HTMLElement).textContent = [
-      dipoleCountText(dipoles.length, all, above.value === "shown" ? "" : shareAtText(session.read().threshold), above.value),
+      dipoleCountText(dipoles.length, listed, above.value === "shown" ? "" : shareAtText(session.read().threshold), above.value),
       radii.size > 1 ? word("dipoles.radii") : "",
     ].filter((text) => text).join(" ");
     for (const { canvas, seen } of canvases) canvas.setAttribute("aria-label", `${word("dipoles")}, ${seen}`);

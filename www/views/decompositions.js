@@ -3,6 +3,7 @@
  * else is known of it. One of a single map needs no such line.
  */
 
+import { freshMaps } from "../session/decompositions.js";
 import { inputOfFile } from "../intake/files.js";
 import { enteredNumber, enteredText, typeset } from "../text/figures.js";
 import { decompositionText, actionText, word } from "../text/words.js";
@@ -93,11 +94,11 @@ function makeLine(session, id) {
     update(one, answer, { now, alone, stopped, threshold }) {
       const fault = one.failure;
       const count = answer?.count ?? 0;
-      const counts = answer === null ? null : countsOf(answer.maps, threshold);
+      const counts = answer === null ? null : countsOf(freshMaps(answer), threshold);
       name.write(one.name);
       subject.write(one.subject);
       information.write(one.information === null ? "" : enteredText(one.information));
-      facts.textContent = decompositionText({ ...one, count, counts, threshold });
+      facts.textContent = decompositionText({ ...one, count, counts, threshold, stopped });
       progress.hidden = stopped || fault !== null || (counts !== null && counts.here >= count);
       if (counts === null) progress.removeAttribute("value");
       else progress.value = counts.here / Math.max(1, count);

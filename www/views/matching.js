@@ -1,5 +1,6 @@
 /** Maps of two decompositions paired one to one by the correlation of their scalp maps; a pair opens in place. */
 
+import { freshMaps } from "../session/decompositions.js";
 import { surroundingsOf } from "../draw/canvas.js";
 import { paintMapDisc } from "../draw/disc.js";
 import { copyText } from "../export/out.js";
@@ -39,7 +40,7 @@ export function showMatching(session) {
 
   /** Each pair with both rows. */
   function pairs() {
-    const [a, b] = [chosen("a")?.answer?.maps ?? [], chosen("b")?.answer?.maps ?? []];
+    const [a, b] = [freshMaps(chosen("a")?.answer), freshMaps(chosen("b")?.answer)];
     /** @param {MapRow | UnfittedMap} row */
     const rv = (row) => (row !== undefined && "rv" in row ? row.rv : Infinity);
     const all = (found?.matches ?? []).map((match) => {
@@ -126,15 +127,20 @@ export function showMatching(session) {
     }
   }
 
+  /** Whether all maps are fitted. @param {Decomposition | undefined} one */
+  const isWhole = (one) => one?.answer != null && one.answer.fitted === one.answer.count;
+
   /** Which answers both lists stand for now. */
   const stamp = () => ["a", "b"].map((side) => {
     const one = chosen(/** @type {"a" | "b"} */ (side));
-    return `${one?.id} ${one?.answer?.key} ${one?.answer?.fitted}`;
+    return `${one?.id} ${one?.answer?.key} ${isWhole(one) ? "" : session.read().stopped}`;
   }).join(" ");
 
   async function ask() {
     const [a, b] = [chosen("a"), chosen("b")];
     if (!section.open || section.hidden || a === undefined || b === undefined || stamp() === asked) return;
+    // What is still coming in is waited for, unless it was given up.
+    if (![a, b].every(isWhole) && !session.read().stopped) return;
     asked = stamp();
     const mine = asked;
     if (a === b) {

@@ -4,6 +4,7 @@
  * scroll like ten.
  */
 
+import { freshMaps } from "../session/decompositions.js";
 import { surroundingsOf } from "../draw/canvas.js";
 import { paintThumbnail } from "../draw/thumbnail.js";
 import { enteredNumber, enteredText, typeset } from "../text/figures.js";
@@ -282,7 +283,7 @@ export function showOverview(session) {
     inner.style.height = `${line * lines.length}px`;
     // With its two rules; a short list ends with its last line.
     list.style.maxHeight = `${line * lines.length + 2}px`;
-    need("ledger-count", HTMLElement).textContent = listedText(sequence.length, countsOf(held.maps, 1).here, held.count);
+    need("ledger-count", HTMLElement).textContent = listedText(sequence.length, countsOf(freshMaps(held), 1).here, held.count);
     need("ledger-none", HTMLElement).hidden = sequence.length > 0;
     if (anew) {
       list.scrollTop = 0;

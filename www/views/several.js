@@ -1,11 +1,12 @@
 /** What all views of several decompositions ask of the state. */
 
+import { freshMaps } from "../session/decompositions.js";
 import { noun } from "../text/words.js";
 
 /** Those with fitted maps. @param {SessionState} state */
 export function fittedDecompositions({ decompositions }) {
   return decompositions
-    .map((decomposition, at) => ({ decomposition, at, maps: decomposition.answer?.maps ?? [] }))
+    .map((decomposition, at) => ({ decomposition, at, maps: freshMaps(decomposition.answer) }))
     .filter(({ maps }) => maps.some((map) => "rv" in map));
 }
 

@@ -3,11 +3,12 @@
  * threshold to move and a table; and mutual-information reductions, where they are given, against it.
  */
 
+import { freshMaps } from "../session/decompositions.js";
 import { layOutShares, paintInformation, paintShares, shareAt, sharesHeight } from "../draw/curves.js";
 import { surroundingsOf } from "../draw/canvas.js";
 import { SvgPen, svgElement } from "../draw/pen.js";
 import { seriesColour, seriesDash } from "../draw/series.js";
-import { copyText } from "../export/out.js";
+import { copyText, saveBlob } from "../export/out.js";
 import { cellsText } from "../export/table.js";
 import { enteredNumber, enteredText, percentText, shortName, typeset } from "../text/figures.js";
 import { shareAtText, shareBelowText, shareTitle, word } from "../text/words.js";
@@ -145,7 +146,7 @@ export function showShares(session) {
         const first = group.members.find((one) => members[one].fitted > 0) === index;
         return first ? [{ name: shortName(group.name), at, ...group.curve, steps: false, information: group.information }] : [];
       }
-      const rv = (decomposition.answer?.maps ?? []).flatMap((map) => ("rv" in map ? [map.rv] : [])).sort((a, b) => a - b);
+      const rv = freshMaps(decomposition.answer).flatMap((map) => ("rv" in map ? [map.rv] : [])).sort((a, b) => a - b);
       const share = rv.map((_, k) => (k + 1) / rv.length);
       const { subject, information } = decomposition;
       const name = [member.name, subject].filter((part) => part).map(shortName).join(", ");
@@ -161,8 +162,8 @@ export function showShares(session) {
    * @param {Summary} held
    * @returns {ShareTable[]}
    */
-  function tables({ members, groups, differences }) {
-    const limit = shareAtText(session.read().threshold);
+  function tables({ labels, members, groups, differences }) {
+    const limit = shareAtText(Number(labels[0]) / 100);
     const series = seriesOf(session.read());
     const at = members.map((member) => series.get(decompositionOf(member)?.id ?? 0));
     /** @type {ShareTable[]} */
@@ -321,6 +322,10 @@ export function showShares(session) {
     paint();
   });
   most.addEventListener("change", paint);
+  need("comparison-json", HTMLButtonElement).addEventListener("click", async () => {
+    const report = await session.comparison();
+    if (report !== null) saveBlob(report, "inward-comparison.json");
+  });
   copy.addEventListener("click", async () => {
     if (summary === null) return;
     const shown = tables(summary).filter(({ rows }) => rows.length > 0);

@@ -3,6 +3,7 @@
  * downloaded in full precision.
  */
 
+import { freshMaps } from "../session/decompositions.js";
 import { copyText, saveBlob } from "../export/out.js";
 import { guarded, isFormula, rowsJson, rowsText } from "../export/rows.js";
 import { typeset } from "../text/figures.js";
@@ -63,7 +64,7 @@ export function showTable(session) {
 
   /** @param {Answer["maps"]} maps */
   function sorted(maps) {
-    const order = [...maps.keys()].filter((at) => maps[at] !== undefined);
+    const order = [...maps.keys()];
     if (sort.code === "number") return sort.way < 0 ? order.reverse() : order;
     const keys = new Map(
       order.map((at) => {
@@ -125,7 +126,7 @@ export function showTable(session) {
       const way = sort.way > 0 ? "ascending" : "descending";
       head.setAttribute("aria-sort", head.getAttribute("data-code") === sort.code ? way : "none");
     }
-    const order = sorted(held.maps);
+    const order = sorted(freshMaps(held));
     const focused = document.activeElement?.closest("#all-numbers tbody tr");
     const kept = focused instanceof HTMLElement ? focused.dataset.index : undefined;
     table.tBodies[0].replaceChildren(...order.slice(0, most).map((index) => rowOf(held, index, columns)));
@@ -161,7 +162,7 @@ export function showTable(session) {
     const held = answer();
     const { columns } = session.read();
     if (held === null) return;
-    const lines = sorted(held.maps).map((index) => {
+    const lines = sorted(freshMaps(held)).map((index) => {
       const map = held.maps[index];
       const cells = "error" in map ? [guarded(map.name), map.error.message] : [guarded(map.name), ...map.cells.slice(1)];
       return [String(index + 1), ...cells];
@@ -180,7 +181,7 @@ export function showTable(session) {
     need(`table-${kind}`, HTMLButtonElement).addEventListener("click", () => {
       const held = answer();
       if (held === null) return;
-      const maps = held.maps.map((map, at) => ({ number: at + 1, map })).filter(({ map }) => map !== undefined);
+      const maps = freshMaps(held).map((map, at) => ({ number: at + 1, map }));
       saveBlob(new Blob([write(maps, held.settings.mapUnit)], { type }), `inward-table.${kind}`);
     });
   }

@@ -49,6 +49,7 @@ fn numbers(unit: Duration) {
     let fitter = fitter(&directions);
     let time = shortest(|| fit_all(&fitter, &maps));
     println!("71 electrodes, 2000 fits as numbers: {}", told(time, maps.len(), unit));
+    println!("microseconds a fit: {:.2}", time.as_secs_f64() / maps.len() as f64 * 1e6);
     println!("calibrations a fit: {:.7}", time.as_secs_f64() / maps.len() as f64 / unit.as_secs_f64());
 }
 

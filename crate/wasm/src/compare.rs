@@ -50,7 +50,7 @@ pub fn compare(list: JsValue, common: JsValue) -> Result<JsValue, JsValue> {
             match key.as_str() {
                 "name" | "subject" | "information" | "head" | "settings" => {}
                 key if INPUTS.contains(&key) => set(&request, key, part(&one, key)),
-                _ => return Err(unknown(format!("unknown part `{key}` of the decomposition “{name}”"))),
+                _ => return Err(thrown_within(unknown(format!("unknown part `{key}`")), &name)),
             }
         }
         let within = |error: JsValue| thrown_within(error, &name);
@@ -90,7 +90,7 @@ impl Comparison {
     }
 
     /// The report under `{ at?, seed?, draws?, pairs? }`.
-    pub fn finish(&self, settings: JsValue) -> Result<JsValue, JsValue> {
+    pub fn finish(self, settings: JsValue) -> Result<JsValue, JsValue> {
         let settings = settings_object(&settings)?;
         if let Some(key) = keys(&settings).find(|key| !QUESTIONS.contains(&key.as_str())) {
             return Err(thrown(&Settings::unknown(format!("nothing of this kind belongs at `settings.{key}`"))));
@@ -101,8 +101,7 @@ impl Comparison {
     }
 
     fn put(&mut self, name: String, subject: JsValue, information: JsValue, study: Inner) -> Result<(), JsValue> {
-        let wrong =
-            |key: &str| thrown(&Settings::unknown(format!("{}, of the decomposition “{name}”", misunderstood(key))));
+        let wrong = |key: &str| thrown_within(thrown(&Settings::unknown(misunderstood(key))), &name);
         let absent = |value: &JsValue| value.is_undefined() || value.is_null();
         if !absent(&subject) && subject.as_string().is_none() {
             return Err(wrong("subject"));

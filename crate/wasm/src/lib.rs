@@ -186,10 +186,19 @@ impl Study {
     }
 
     /// Its maps matched one to one with those of another study; positions are three numbers for each map, not numbers where
-    /// it is not fitted.
-    pub fn matches(&self, other: &Study, own: &[f64], others: &[f64]) -> Result<JsValue, JsValue> {
+    /// it is not fitted; `names` are those of the two in what may be said.
+    pub fn matches(
+        &self,
+        other: &Study,
+        own: &[f64],
+        others: &[f64],
+        names: Option<Vec<String>>,
+    ) -> Result<JsValue, JsValue> {
         let [own, others] = [own, others].map(compare::positions);
-        let found = self.0.matches(&other.0, [&own, &others], ["first", "second"]);
+        let name = |at: usize, otherwise: &'static str| {
+            names.as_ref().and_then(|names| names.get(at)).map_or(otherwise, String::as_str)
+        };
+        let found = self.0.matches(&other.0, [&own, &others], [name(0, "first"), name(1, "second")]);
         plain(&found.map_err(|error| thrown(&error))?)
     }
 

@@ -30,9 +30,19 @@ pub fn bench(workspace: &Workspace) -> Result<()> {
     println!("\nmisses");
     run(&mut example("inward-tests", "misses"))?;
     println!("\nNumPy and SciPy");
-    let mut script = workspace.command("python3");
-    if run(script.arg("tests/reference/scipy_bench.py").env("OMP_NUM_THREADS", "1")).is_err() {
+    let packages = workspace.command("python3").args(["-c", "import numpy, scipy"]).output();
+    if !packages.is_ok_and(|tried| tried.status.success()) {
         println!("not run: it needs python3 with numpy and scipy");
+        return Ok(());
+    }
+    let mut script = workspace.command("python3");
+    let told = output(script.arg("tests/reference/scipy_bench.py").env("OMP_NUM_THREADS", "1"))?;
+    println!("{told}");
+    let number = |text: &str| text.trim().parse::<f64>().ok();
+    let scipy = told.rsplit("; ").next().and_then(|last| number(last.split(" µs").next()?));
+    let own = native.lines().find_map(|line| number(line.strip_prefix("microseconds a fit: ")?));
+    if let Some((scipy, own)) = scipy.zip(own) {
+        println!("one fit takes NumPy and SciPy {:.0} times as long as native code of one thread", scipy / own);
     }
     Ok(())
 }

@@ -1,6 +1,6 @@
 /**
  * The workers of the page: one that is asked by hand, and helpers for ranges of maps and for other decompositions, which
- * are started when there is first something for them.
+ * are started when there is first something for them, and be it to warm up.
  */
 
 import { isLarge, keysOf, makeBook, makeClient } from "./client.js";

@@ -113,8 +113,12 @@ export function makeSchedule(members) {
         const each = (now - since) / step.maps.length;
         job.speed = job.speed === 0 ? each : (job.speed + each) / 2;
         since = now;
-        piece.first += step.maps.length;
-        job.fitted(step.first, step.maps);
+        // A worker that was started afresh begins its piece again.
+        const fresh = step.maps.slice(Math.max(0, piece.first - step.first));
+        if (fresh.length === 0) return;
+        const { first } = piece;
+        piece.first += fresh.length;
+        job.fitted(first, fresh);
       }
     };
     const opening = job.count === null;

@@ -6,7 +6,7 @@ use crate::map::average_referenced;
 use crate::math::{Vec3, assignment, dot, rank};
 use crate::report::{
     Comparison, DecompositionReport, ErrorReport, MapReport, MapRow, Match, Member, NearDipolar, Note, Pair, Questions,
-    RankReport, Settings, Summary,
+    RankReport, Settings, Summary, full_name,
 };
 use crate::understand::ColumnsAre;
 use std::collections::HashMap;
@@ -32,6 +32,12 @@ pub struct Decomposition {
     pub information: Option<f64>,
     /// Its maps.
     pub study: Study,
+}
+
+impl Decomposition {
+    fn full_name(&self) -> String {
+        full_name(&self.name, self.subject.as_deref())
+    }
 }
 
 /// Compares decompositions: fits all maps, counts the near-dipolar ones, matches components. Without `pairs`, all of one
@@ -76,7 +82,7 @@ pub fn compare(
     let mut notes = summary.notes;
     let mut decompositions = Vec::new();
     for ((one, maps), member) in list.iter().zip(fits).zip(summary.members) {
-        let RankReport { rank, note } = one.study.rank(Some(&one.name));
+        let RankReport { rank, note } = one.study.rank(Some(&one.full_name()));
         notes.extend(note);
         let report = one.study.preamble();
         decompositions.push(DecompositionReport {
@@ -116,7 +122,11 @@ pub fn compare(
     }
     let pair = |[a, b]: [usize; 2]| {
         let (first, second) = (&list[a], &list[b]);
-        let found = first.study.matches(&second.study, [&positions[a], &positions[b]], [&first.name, &second.name]);
+        let found = first.study.matches(
+            &second.study,
+            [&positions[a], &positions[b]],
+            [&first.full_name(), &second.full_name()],
+        );
         let all = |study: &Study| (0..study.count()).collect();
         let mut pair = found.unwrap_or_else(|error| Pair {
             a,

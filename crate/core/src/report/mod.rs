@@ -17,6 +17,7 @@ pub use messages::{hint, is_warning, message, within_decomposition};
 pub use row::{Column, MapRow, columns};
 pub use settings::{Assessment, HeadSettings, Polarity, Settings};
 pub use sheet::{Alternative, HeadSheet, Row, Scale, Sheet, SheetElectrode, Site};
+pub(crate) use summary::full_name;
 pub use summary::{Curve, Difference, GroupSummary, Member, MemberSummary, Questions, Summary};
 
 use crate::finding::{Code, Error, Finding, Place, Value};

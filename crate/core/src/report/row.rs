@@ -124,7 +124,7 @@ pub fn columns(unit: Option<MapUnit>) -> Vec<Column> {
                 Some(MapUnit::Relative) => "relative",
                 Some(_) => "µV²",
             },
-            "Mean square of the map over the electrodes, times the variance of the activation where that is given.",
+            "Mean square of the map over the electrodes, times the variance of the activation; empty where that is not given.",
         ),
     ]
 }

@@ -30,6 +30,12 @@ pub struct Member {
     pub information: Option<f64>,
 }
 
+impl Member {
+    fn full_name(&self) -> String {
+        full_name(&self.name, self.subject.as_deref())
+    }
+}
+
 /// What is asked about decompositions side by side.
 #[derive(Clone, Debug, PartialEq, Deserialize)]
 #[serde(default)]
@@ -301,7 +307,7 @@ impl Group<'_> {
         };
         let band = |at: f64| resampler.as_ref().map(|resampler| resampler.interval(&shares(at)));
         let bands: Vec<Option<[f64; 2]>> = at.iter().map(|at| band(*at)).collect();
-        let rv = curve();
+        let rv = curve(at);
         let along: Option<Vec<[f64; 2]>> = rv.iter().map(|at| band(*at)).collect();
         let ends = |end: usize| along.as_ref().map(|along| along.iter().map(|band| band[end]).collect());
         let subject_means = |of: &dyn Fn(usize) -> Option<f64>| -> Option<f64> {
@@ -334,10 +340,14 @@ impl Group<'_> {
     }
 }
 
-/// Residual variances at which a group's curve is told: twenty to each power of ten from 0.1 to 10 %, 1.25 % apart from there.
-fn curve() -> Vec<f64> {
+/// Residual variances at which a group's curve is told: twenty to each power of ten from 0.1 to 10 %, 1.25 % apart from
+/// there, and the thresholds, so that curve and table agree at them.
+fn curve(at: &[f64]) -> Vec<f64> {
     let low = (0..40).map(|k| libm::exp10(f64::from(k) / 20.0 - 3.0));
-    low.chain((8..=80).map(|k| f64::from(k) / 80.0)).collect()
+    let mut rv: Vec<f64> = low.chain((8..=80).map(|k| f64::from(k) / 80.0)).chain(at.iter().copied()).collect();
+    rv.sort_by(f64::total_cmp);
+    rv.dedup();
+    rv
 }
 
 fn notes(members: &[Member], samples: &[Sample], groups: &[GroupSummary], questions: &Questions) -> Vec<Finding> {
@@ -360,7 +370,7 @@ fn notes(members: &[Member], samples: &[Sample], groups: &[GroupSummary], questi
     let partly = |(member, sample): &(&Member, &Sample)| {
         sample.fitted() > 0 && sample.weighted(1.0).is_none() && member.variance.iter().flatten().next().is_some()
     };
-    let names: Vec<String> = members.iter().zip(samples).filter(partly).map(|(member, _)| full_name(member)).collect();
+    let names: Vec<String> = members.iter().zip(samples).filter(partly).map(|(member, _)| member.full_name()).collect();
     if !names.is_empty() {
         notes.push(Finding::new(Code::VarianceIncomplete).with("names", names));
     }
@@ -396,18 +406,18 @@ fn electrode_sets(members: &[Member]) -> Option<Finding> {
         }
     }
     let told = |(keys, member, count): &(Vec<String>, &Member, usize)| match count {
-        1 => format!("{} in “{}”", keys.len(), full_name(member)),
-        _ => format!("{} in “{}” and {} more", keys.len(), full_name(member), count - 1),
+        1 => format!("{} in “{}”", keys.len(), member.full_name()),
+        _ => format!("{} in “{}” and {} more", keys.len(), member.full_name(), count - 1),
     };
     let sets = sets.iter().map(told).collect::<Vec<_>>();
     Some(Finding::new(Code::ElectrodeSetsDiffer).with("sets", sets).with("labels", labels))
 }
 
 /// Name and subject.
-pub(super) fn full_name(member: &Member) -> String {
-    match member.subject.as_deref() {
-        Some(subject) if !subject.is_empty() => format!("{}, {subject}", member.name),
-        _ => member.name.clone(),
+pub(crate) fn full_name(name: &str, subject: Option<&str>) -> String {
+    match subject {
+        Some(subject) if !subject.is_empty() => format!("{name}, {subject}"),
+        _ => name.to_owned(),
     }
 }
 

@@ -3,11 +3,12 @@ use super::positions::label_of;
 use super::{Columns, Found};
 use crate::electrode::Label;
 use crate::finding::{Code, Error, Finding, Place};
+use crate::read::MOST_ELECTRODES;
 
 /// What a table of channels declares.
 #[derive(Debug, Default)]
 pub(super) struct Declared {
-    /// In the order of the recording.
+    /// In the order of the recording; of more than electrodes there may be, the first ones.
     pub all: Vec<Label>,
     pub scalp: Vec<Label>,
     pub other: Vec<Label>,
@@ -34,7 +35,9 @@ pub(super) fn read_channels(grid: &Grid<'_>, found: &mut Found) -> Result<Declar
         let says = |column: Option<usize>, word: &str| {
             column.is_some_and(|column| grid.word(row, column).eq_ignore_ascii_case(word))
         };
-        declared.all.push(name.clone());
+        if row <= MOST_ELECTRODES {
+            declared.all.push(name.clone());
+        }
         match kind {
             Some(_) if says(kind, "eeg") => declared.scalp.push(name.clone()),
             Some(column) if !crate::read::is_missing(grid.word(row, column)) => declared.other.push(name.clone()),

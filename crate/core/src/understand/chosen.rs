@@ -9,7 +9,7 @@ use super::{
 };
 use crate::electrode::{Electrode, Kind as LabelKind, Label, Reading as LabelReading};
 use crate::finding::{Choice, Code, Error, Finding, Origin, Place};
-use crate::read::Record;
+use crate::read::{MOST_ELECTRODES, Record};
 use std::collections::{HashMap, HashSet};
 
 /// Fewest rows whose first columns are positions beyond doubt if they lie on a head and have no names.
@@ -182,11 +182,12 @@ impl Chosen {
         }
         // Whose order unlabelled values have: a list of labels is there for that, a table of channels tells the order of the
         // recording, one of electrodes has any.
-        let recorded = [&declared.scalp, &declared.all].map(|labels| (channel_grid, labels.clone()));
+        let usable = |labels: &&Vec<Label>| (1..=MOST_ELECTRODES).contains(&labels.len());
+        let recorded = [&declared.scalp, &declared.all].into_iter().filter(usable);
         let known: Vec<(Option<&Grid<'_>>, Vec<Label>)> = list
             .iter()
             .map(|(grid, list)| (Some(*grid), list.clone()))
-            .chain(recorded.into_iter().filter(|(_, labels)| !labels.is_empty()))
+            .chain(recorded.map(|labels| (channel_grid, labels.clone())))
             .chain(
                 electrodes.iter().map(|(read, _, grid)| (Some(*grid), read.iter().map(|e| e.label.clone()).collect())),
             )

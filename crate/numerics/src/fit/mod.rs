@@ -12,7 +12,7 @@ use crate::forward::{Field, LeadField};
 use crate::math::{Single, Vec3, centre, dot, mean};
 use grid::{Explained, Grid};
 use objective::Objective;
-use refine::{DOUBLE, Region, SINGLE, least, refine};
+use refine::{DOUBLE, Precision, Region, SINGLE, least, refine};
 
 /// A fitted dipole, in head coordinates.
 #[derive(Clone, Debug, PartialEq)]
@@ -113,15 +113,18 @@ impl Fitter {
     fn search(&self, map: &[f64], mut explained: Explained) -> Option<Fit> {
         let region = Region { reach: self.field.reach(), step: self.grid.step() };
         let starts = self.grid.starts(&mut explained, STARTS);
+        // Minima whose order the rough lead field may have wrong are not given up for one another.
+        let slack = SINGLE.slack + 4.0 * self.field.rough_images().error_bound();
+        let rough = Precision { slack, ..SINGLE };
         let mut surface = Objective::new(&self.rough, map);
         let mut minima: Vec<Fit> = Vec::with_capacity(STARTS);
         for start in &starts {
             // The grid is so dense that no minimum lies far below the points around it.
-            if START_OVER_MINIMUM * start.left_over <= least(&minima) + SINGLE.slack {
-                minima.extend(refine(&mut surface, start.position, region, SINGLE, &minima));
+            if START_OVER_MINIMUM * start.left_over <= least(&minima) + slack {
+                minima.extend(refine(&mut surface, start.position, region, rough, &minima));
             }
         }
-        let most = least(&minima) + SINGLE.slack + 4.0 * self.field.rough_images().error_bound();
+        let most = least(&minima) + slack;
         let near = minima.iter().filter(|minimum| minimum.residual_variance <= most).map(|minimum| minimum.position);
         let mut exact = Objective::new(self.field.field(), map);
         let mut fits: Vec<Fit> = Vec::with_capacity(1);
