@@ -93,6 +93,16 @@ fn groups_are_means_over_subjects() {
 }
 
 #[test]
+fn subjects_that_are_all_alike_leave_no_interval_to_be_told() {
+    let members: Vec<Member> =
+        ["a", "b", "c", "d", "e", "f"].map(|subject| member("x", Some(subject), &[0.02, 0.3, 0.5])).to_vec();
+    let told = summary(&members);
+    let group = &told.groups[0];
+    assert!((group.high[0].unwrap() - group.low[0].unwrap()).abs() < 1e-12);
+    assert_eq!(group.cells[2], "all subjects alike", "{:?}", group.cells);
+}
+
+#[test]
 fn other_electrodes_bring_a_warning() {
     let with = |name: &str, labels: &str| Member {
         electrodes: labels.split(',').map(String::from).collect(),

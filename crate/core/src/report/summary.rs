@@ -427,6 +427,7 @@ fn signed(difference: f64) -> String {
     if difference > 0.0 && text != "0.0" { format!("+{text}") } else { text }
 }
 
+/// An interval in words; without any width it would look like certainty.
 fn between([low, high]: [f64; 2], text: fn(f64) -> String) -> String {
-    format!("{} to {}", text(low), text(high))
+    if high - low < 1e-12 { "all subjects alike".into() } else { format!("{} to {}", text(low), text(high)) }
 }
