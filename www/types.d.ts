@@ -541,7 +541,7 @@ interface MapRow {
 }
 
 /** A row in pieces, for the way out of the engine: its numbers, and its words divided by NUL. */
-type PackedRow = [Float64Array, string];
+type PackedRow = [number[], string];
 
 /** One line of the list of maps. */
 type MapSummary = MapRow | UnfittedMap;

@@ -7,7 +7,7 @@ export function unpackedRow(given) {
   const [rv, adjusted_rv, degrees_of_freedom, depth_mm, eccentricity, strength, radial, edge, power, variance, turned] = numbers;
   const [name, site, side, region, ...cells] = text.split("\0");
   /** @param {number} at */
-  const vector = (at) => [...numbers.subarray(at, at + 3)];
+  const vector = (at) => numbers.slice(at, at + 3);
   /** @param {number} number */
   const known = (number) => (Number.isNaN(number) ? null : number);
   return {

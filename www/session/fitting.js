@@ -81,8 +81,12 @@ export function makeFitting(store, pool, fail) {
     return { done, total, left, about: known.length < batch.size };
   }
 
+  /** How long the last showing took. */
+  let took = 0;
+
   /** Shows what has come in. */
   function showMaps() {
+    const start = performance.now();
     clearTimeout(timer);
     timer = 0;
     const { decompositions, current, answer } = store.read();
@@ -99,13 +103,14 @@ export function makeFitting(store, pool, fail) {
     const answerNow = now(current, answer);
     unshown.clear();
     store.write({ decompositions: others, answer: answerNow, progress: progress() });
+    took = performance.now() - start;
   }
 
   /** @param {Run} run @param {boolean} [atOnce] */
   function showLater(run, atOnce = false) {
     unshown.add(run);
     if (atOnce) showMaps();
-    else if (timer === 0) timer = /** @type {any} */ (setTimeout)(showMaps, SHOWING_MS);
+    else if (timer === 0) timer = /** @type {any} */ (setTimeout)(showMaps, Math.max(SHOWING_MS, 4 * took));
   }
 
   /** @param {Run} run */

@@ -8,7 +8,7 @@ import { shortName } from "../text/figures.js";
 import { need } from "./element.js";
 import { figureTools, showFigure } from "./figure.js";
 import { HEAD_VIEWS } from "./head_views.js";
-import { fittedDecompositions, seriesOf } from "./several.js";
+import { fittedDecompositions, seriesOf, inOne } from "./several.js";
 import { keepPainted } from "./surface.js";
 
 /** @import { Session } from "../session/session.js" */
@@ -211,11 +211,12 @@ export function showAllDipoles(session) {
       update();
     },
   );
+  const updateSoon = inOne(update);
   for (const pick of /** @type {((state: SessionState) => unknown)[]} */ ([
     (state) => state.decompositions,
     (state) => state.threshold,
     (state) => state.current,
   ])) {
-    session.watch(pick, update);
+    session.watch(pick, updateSoon);
   }
 }

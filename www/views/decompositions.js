@@ -3,6 +3,7 @@
  * else is known of it. One of a single map needs no such line.
  */
 
+import { inOne } from "./several.js";
 import { freshMaps } from "../session/decompositions.js";
 import { inputOfFile } from "../intake/files.js";
 import { enteredNumber, enteredText, typeset } from "../text/figures.js";
@@ -151,8 +152,9 @@ export function showDecompositions(session) {
       list.replaceChildren(...wanted);
     }
   }
-  session.watch((state) => state.decompositions, show);
-  session.watch((state) => state.answer, show);
+  const showSoon = inOne(show);
+  session.watch((state) => state.decompositions, showSoon);
+  session.watch((state) => state.answer, showSoon);
   session.watch((state) => state.stopped, show);
   session.watch((state) => state.threshold, show);
 }

@@ -9,7 +9,7 @@ import { percentText, shortName, typeset } from "../text/figures.js";
 import { matchedText, unmatchedText, word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { make, need } from "./element.js";
-import { fittedDecompositions } from "./several.js";
+import { fittedDecompositions, inOne } from "./several.js";
 
 /** @import { Session } from "../session/session.js" */
 
@@ -163,7 +163,7 @@ export function showMatching(session) {
     write();
   }
 
-  section.addEventListener("toggle", ask);
+  section.addEventListener("toggle", offer);
   for (const list of Object.values(lists)) list.addEventListener("change", ask);
   for (const name of MATCH_ORDERS) {
     table.querySelector(`th[data-order="${name}"] button`)?.addEventListener("click", () => {
@@ -177,19 +177,19 @@ export function showMatching(session) {
     confirmOn(copy, await copyText(cellsText([heading, ...rows])));
   });
 
-  session.watch(
-    (state) => state.decompositions,
-    () => {
-      const fitted = fittedDecompositions(session.read());
-      section.hidden = fitted.length < 2;
-      if (section.hidden) return;
-      const names = fitted.map(({ decomposition: { id, name, subject } }) => ({ id: String(id), text: [name, subject].filter((part) => part).map(shortName).join(" · ") }));
-      for (const [at, list] of Object.values(lists).entries()) {
-        const held = list.value;
-        list.replaceChildren(...names.map(({ id, text }) => make("option", text, { value: id })));
-        list.value = names.some(({ id }) => id === held) ? held : names[at].id;
-      }
-      ask();
-    },
-  );
+  /** Offers the decompositions that there are. */
+  function offer() {
+    const fitted = fittedDecompositions(session.read());
+    section.hidden = fitted.length < 2;
+    if (section.hidden || !section.open) return;
+    const names = fitted.map(({ decomposition: { id, name, subject } }) => ({ id: String(id), text: [name, subject].filter((part) => part).map(shortName).join(" · ") }));
+    for (const [at, list] of Object.values(lists).entries()) {
+      const held = list.value;
+      list.replaceChildren(...names.map(({ id, text }) => make("option", text, { value: id })));
+      list.value = names.some(({ id }) => id === held) ? held : names[at].id;
+    }
+    ask();
+  }
+
+  session.watch((state) => state.decompositions, inOne(offer));
 }

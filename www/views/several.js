@@ -3,6 +3,24 @@
 import { freshMaps } from "../session/decompositions.js";
 import { noun } from "../text/words.js";
 
+/**
+ * Does something once after many changes, and rests four times as long as it took.
+ * @param {() => void} job
+ */
+export function inOne(job) {
+  let [due, took] = [false, 0];
+  return () => {
+    if (due) return;
+    due = true;
+    setTimeout(() => {
+      due = false;
+      const start = performance.now();
+      job();
+      took = performance.now() - start;
+    }, 4 * took);
+  };
+}
+
 /** Those with fitted maps. @param {SessionState} state */
 export function fittedDecompositions({ decompositions }) {
   return decompositions

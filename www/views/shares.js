@@ -30,6 +30,9 @@ const LEAST = 0.001;
 /** CSS pixels across a figure that is saved. */
 const SAVED = { shares: 720, information: 480 };
 
+/** More decompositions than this are not drawn while they come in. */
+const MANY = 20;
+
 /** @param {Session} session */
 export function showShares(session) {
   const section = need("shares", HTMLDetailsElement);
@@ -224,6 +227,8 @@ export function showShares(session) {
   /** Asks the engine; what has changed meanwhile is asked about once more. */
   async function ask() {
     if (section.hidden || !section.open) return;
+    // Lines of many decompositions are drawn when all have come in.
+    if (session.read().progress !== null && session.read().decompositions.length > MANY) return;
     if (asking) {
       stale = true;
       return;
@@ -232,6 +237,7 @@ export function showShares(session) {
     do {
       stale = false;
       const { threshold } = session.read();
+      const start = performance.now();
       try {
         summary = await session.summary([threshold]);
       } catch (fault) {
@@ -239,6 +245,9 @@ export function showShares(session) {
         summary = null;
         if (!stale) session.fail(fault);
       }
+      // While maps come in, fitting them has the greater part of the time.
+      const took = performance.now() - start;
+      if (stale && session.read().progress !== null) await new Promise((wake) => setTimeout(wake, 10 * took));
     } while (stale);
     asking = false;
     lines = summary === null ? [] : linesOf(summary);
@@ -334,6 +343,7 @@ export function showShares(session) {
   });
 
   section.addEventListener("toggle", ask);
+  session.watch((state) => state.progress === null, ask);
 
   const title = () => shareTitle(nounOf(session.read()));
   figureTools(session, need("share-tools", HTMLElement), () => ({

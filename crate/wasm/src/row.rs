@@ -2,7 +2,7 @@
 //! slowly than a map is fitted.
 
 use inward_core::report::MapRow;
-use js_sys::{Array, Float64Array};
+use js_sys::Array;
 use wasm_bindgen::JsValue;
 
 /// `[numbers, words]`, from which `www/engine/row.js` makes the row; absent numbers are NaN, words are divided by NUL.
@@ -21,9 +21,11 @@ pub(crate) fn to_js(row: &MapRow) -> JsValue {
         f64::from(u8::from(row.flipped)),
     ];
     let vectors = [row.canonical_mm, row.canonical_direction, row.position_mm];
-    let numbers: Vec<f64> = plain.into_iter().chain(vectors.into_iter().flat_map(|vector| vector.0)).collect();
+    let numbers = plain.into_iter().chain(vectors.into_iter().flat_map(|vector| vector.0));
+    // Not as a typed array: many small ones lie outside of what the collector counts, and pile up.
+    let numbers: Array = numbers.map(JsValue::from).collect();
     let words = [&row.name, row.nearest_site.unwrap_or_default(), row.side, row.region];
     let words = words.into_iter().chain(row.cells.iter().map(String::as_str));
     let words: Vec<String> = words.map(|word| word.replace('\0', "\u{fffd}")).collect();
-    Array::of2(&Float64Array::from(&numbers[..]), &words.join("\0").into()).into()
+    Array::of2(&numbers, &words.join("\0").into()).into()
 }
