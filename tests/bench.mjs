@@ -254,14 +254,16 @@ export async function bench(openEngine, tell, worker, native) {
   await table20306(worker, unit, tell);
 }
 
-if (typeof process !== "undefined") {
+/** No `await` and no `import.meta` outside of it: a browser takes this file as a classic script. */
+async function inNode() {
   const { pathToFileURL } = await import("node:url");
   const { Worker, isMainThread, parentPort } = await import("node:worker_threads");
-  const dist = process.env.INWARD_DIST ?? new URL("../target/dist", import.meta.url).pathname;
+  const script = pathToFileURL(process.argv[1]);
+  const dist = process.env.INWARD_DIST ?? new URL("../target/dist", script).pathname;
   const { openEngine } = await import(pathToFileURL(`${dist}/engine/inward.mjs`).href);
   if (isMainThread) {
     const worker = () => {
-      const thread = new Worker(new URL(import.meta.url));
+      const thread = new Worker(script);
       const ask = (question) =>
         new Promise((resolve, reject) => {
           thread.once("message", resolve);
@@ -276,3 +278,5 @@ if (typeof process !== "undefined") {
     parentPort.on("message", (question) => parentPort.postMessage(answer(question)));
   }
 }
+
+if (typeof process !== "undefined") inNode();
