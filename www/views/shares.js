@@ -30,9 +30,6 @@ const LEAST = 0.001;
 /** CSS pixels across a figure that is saved. */
 const SAVED = { shares: 720, information: 480 };
 
-/** More decompositions than this are not drawn while they come in. */
-const MANY = 20;
-
 /** @param {Session} session */
 export function showShares(session) {
   const section = need("shares", HTMLDetailsElement);
@@ -227,8 +224,6 @@ export function showShares(session) {
   /** Asks the engine; what has changed meanwhile is asked about once more. */
   async function ask() {
     if (section.hidden || !section.open) return;
-    // Lines of many decompositions are drawn when all have come in.
-    if (session.read().progress !== null && session.read().decompositions.length > MANY) return;
     if (asking) {
       stale = true;
       return;
@@ -343,7 +338,6 @@ export function showShares(session) {
   });
 
   section.addEventListener("toggle", ask);
-  session.watch((state) => state.progress === null, ask);
 
   const title = () => shareTitle(nounOf(session.read()));
   figureTools(session, need("share-tools", HTMLElement), () => ({

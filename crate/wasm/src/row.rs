@@ -22,7 +22,6 @@ pub(crate) fn to_js(row: &MapRow) -> JsValue {
     ];
     let vectors = [row.canonical_mm, row.canonical_direction, row.position_mm];
     let numbers = plain.into_iter().chain(vectors.into_iter().flat_map(|vector| vector.0));
-    // Not as a typed array: many small ones lie outside of what the collector counts, and pile up.
     let numbers: Array = numbers.map(JsValue::from).collect();
     let words = [&row.name, row.nearest_site.unwrap_or_default(), row.side, row.region];
     let words = words.into_iter().chain(row.cells.iter().map(String::as_str));
