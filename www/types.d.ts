@@ -72,6 +72,102 @@ interface EngineSettings {
   columnsAre?: string | null;
   times?: { start: number; step: number; unit?: string } | null;
   baseline?: { from: number; to: number } | null;
+  errors?: ErrorSettings;
+  noise?: { sd: number } | { singleTrialSd: number; trials: number } | null;
+  sources?: SourceSettings;
+  limits?: LimitSettings;
+}
+
+/** What may be wrong about a fit, for its region and for single dipoles in an imperfect head. */
+interface ErrorSettings {
+  electrodesMm?: number;
+  skullRatio?: [number, number] | null;
+  /** Times the standard error of the sphere's fit. */
+  sphere?: number;
+  /** Weak sources that make up the noise; 0 for independent noise. */
+  backgroundSources?: number;
+  draws?: number;
+  seed?: number;
+}
+
+/** The rule for the sources of reference populations. */
+interface SourceSettings {
+  draws?: number;
+  seed?: number;
+  maxEccentricity?: number;
+  floor?: [number, number];
+  orientation?: "isotropic" | "radial" | "tangential";
+  noise?: number;
+}
+
+/** Limits of the verdict. */
+interface LimitSettings {
+  oneDipole?: number;
+  others?: number;
+  loneElectrode?: number;
+  coverageDeg?: number | null;
+}
+
+type VerdictWord = "lone-electrode" | "edge" | "below-the-brain" | "dipolar" | "undecided" | "not-dipolar";
+
+type PopulationKind = "noise" | "one-dipole" | "two-dipoles" | "five-dipoles" | "twenty-dipoles" | "hundred-dipoles";
+
+/** (x − centre)ᵀ C⁻¹ (x − centre) ≤ scale², C from xx, xy, xz, yy, yz, zz; canonical axes, the scalp at radius 1. */
+interface Ellipsoid {
+  centre: number[];
+  covariance: number[];
+  scale: number;
+}
+
+/** How far a fit may be trusted, in words and as it is drawn. */
+interface Trust {
+  /** Null while no reference populations are kept. */
+  verdict: {
+    word: VerdictWord;
+    title: string;
+    sentence: string;
+    reasons: { code: string; text: string; value: number | null; limit: number | null }[];
+    hints: { code: string; text: string }[];
+  } | null;
+  region: {
+    sentence: string;
+    rows: SheetRow[];
+    causes: { cause: string; label: string; size: string; sd: string }[];
+    /** Refitted positions, in the axes and the unit of a figure. */
+    cloud: number[][];
+    ellipsoid: Ellipsoid;
+    noise_only: Ellipsoid | null;
+    /** The residual's, in words. */
+    structure: string;
+    repeats: { sentence: string; rows: SheetRow[]; points: number[][] } | null;
+    alt: string;
+    notes: string[];
+  };
+  /** Those that are kept; percent without the sign. */
+  populations: {
+    kind: PopulationKind;
+    label: string;
+    draws: number;
+    sentence: string;
+    median: string;
+    percentile_5: string;
+    percentile_95: string;
+    share_lower: string;
+    share_lower_here: string;
+    boundary: string;
+  }[];
+  /** Head, depth, number and orientation: stands beside every figure of populations. */
+  rule: string;
+  cautions: string[];
+}
+
+/** Two numbers for each draw: residual variance; eccentricity, negative at the boundary. */
+interface Populations {
+  key: string;
+  kinds: Record<PopulationKind, Float64Array>;
+  done: number;
+  total: number;
+  state: "waiting" | "drawing" | "done" | "stopped";
 }
 
 interface FileSettings {
@@ -676,7 +772,7 @@ interface Inputs extends Record<InputKind, Input | null> {
 
 /**
  * One table of maps with all that belongs to it. What is current stands in the state itself too, where it is the same.
- * Shared by all are the head, electrodes left out or interpolated, and that a head is unusual.
+ * Shared by all are the head, electrodes left out or interpolated, that a head is unusual, and what is said of errors, sources and limits.
  */
 interface Decomposition {
   id: number;
@@ -735,6 +831,10 @@ interface Answer {
   chosen: number;
   /** Null while the chosen map could not be fitted. */
   sheet: Sheet | null;
+  /** Of the chosen map; null until it is there. */
+  trust: Trust | null;
+  /** Of every map, null where it is not fitted; null until reference populations are there. */
+  verdicts: (VerdictWord | null)[] | null;
 }
 
 interface SessionState {
@@ -771,4 +871,6 @@ interface SessionState {
   stopped: boolean;
   /** The residual variance up to which maps count as near-dipolar. */
   threshold: number;
+  /** Of the current decomposition. */
+  populations: Populations | null;
 }

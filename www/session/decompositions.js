@@ -7,7 +7,7 @@ import { BOUND, FIRST_SETTINGS, settingsForOther } from "./settings.js";
 const MIRRORED = ["inputs", "settings", "example", "answer", "failure"];
 
 /** Settings that go for all decompositions. @type {(keyof PageSettings)[]} */
-export const SHARED = ["head", "exclude", "interpolated", "unusualHead"];
+export const SHARED = ["head", "exclude", "interpolated", "unusualHead", "errors", "sources", "limits"];
 
 /** The maps of an answer that are fitted under its settings; those after them are of earlier ones. @param {Answer | null | undefined} answer */
 export function freshMaps(answer) {
@@ -194,7 +194,7 @@ export function mirrored(state) {
   const spare = (/** @type {Decomposition} */ one) => one.id !== current && one.answer?.sheet;
   const decompositions = !state.decompositions.some(spare)
     ? state.decompositions
-    : state.decompositions.map((one) => (one.answer !== null && spare(one) ? { ...one, answer: { ...one.answer, sheet: null } } : one));
+    : state.decompositions.map((one) => (one.answer !== null && spare(one) ? { ...one, answer: { ...one.answer, sheet: null, trust: null } } : one));
   const before = decompositions.find(({ id }) => id === current);
   if (before === undefined || MIRRORED.every((key) => before[key] === state[key])) return decompositions;
   const changed = before.settings !== settings || before.inputs !== inputs;

@@ -158,7 +158,7 @@ export function makeFitting(store, pool, fail) {
     const beside = inputs.maps.role === "electrodes-and-maps" ? inputs.maps.name : null;
     const names = { electrodes: inputs.electrodes?.name ?? beside, maps: inputs.maps.name };
     run.count = count;
-    run.draft = { key: run.key, names, inputs, example, settings, preamble, count, maps: [], fitted: 0, chosen: 0, sheet: null };
+    run.draft = { key: run.key, names, inputs, example, settings, preamble, count, maps: [], fitted: 0, chosen: 0, sheet: null, trust: null, verdicts: null };
     if (before === null || before.count !== count || before.names.maps !== names.maps) return;
     // The same tables under other settings: the same map stays in view.
     run.draft.maps = [...before.maps];
@@ -363,7 +363,7 @@ export function makeFitting(store, pool, fail) {
       const { id, inputs, answer } = one;
       if (engine === null || answer === null || answer.fitted < answer.count || answer.inputs !== inputs) return { ...one, answer: null };
       const key = engine.name(requestOf(one), null);
-      const draft = { ...answer, key, sheet: null };
+      const draft = { ...answer, key, sheet: null, trust: null, verdicts: null };
       const { count } = answer;
       runs.set(id, { id, inputs, key, wish: wishOf({ ...one, settings: answer.settings }), draft, pending: false, over: true, count, done: count, parts: new Map(), sheet: null });
       return { ...one, answer: draft };

@@ -39,10 +39,10 @@ export function makeInquiries(store, pool, fail, fitting) {
       const map = answer?.maps[index];
       if (engine === null || answer === null || map === undefined) return;
       if ("error" in map) {
-        store.write({ answer: { ...answer, chosen: index, sheet: null } });
+        store.write({ answer: { ...answer, chosen: index, sheet: null, trust: null } });
         return;
       }
-      store.write({ answer: { ...answer, chosen: index } });
+      store.write({ answer: { ...answer, chosen: index, trust: null } });
       try {
         const sheet = await engine.ask({ kind: "sheet", key: answer.key, index });
         const now = store.read().answer;

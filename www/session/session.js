@@ -55,6 +55,7 @@ export function makeSession() {
       progress: null,
       stopped: false,
       threshold: 0.1,
+      populations: null,
     }),
   );
 

@@ -59,6 +59,7 @@ export const BOUND = {
     "columnsAre",
     "times",
     "baseline",
+    "noise",
   ],
   electrodes: ["exclude", "interpolated", "axes", "mirror", "unusualHead", "head", "units", "columns", "angles"],
 };

@@ -543,6 +543,10 @@ const SETTING_NAMES = {
   columnsAre: "what the maps are",
   times: "times",
   baseline: "baseline",
+  errors: "errors of the fit",
+  noise: "noise",
+  sources: "sources of reference populations",
+  limits: "limits of the verdict",
 };
 
 /** @param {string[]} names of settings */
