@@ -8,7 +8,7 @@ import { freshMaps } from "../session/decompositions.js";
 import { inputOfFile } from "../intake/files.js";
 import { enteredNumber, enteredText, typeset } from "../text/figures.js";
 import { decompositionText, actionText, word } from "../text/words.js";
-import { make, need } from "./element.js";
+import { make, need, rewrite } from "./element.js";
 import { countsOf } from "./ledger.js";
 import { withTerms } from "./terms.js";
 
@@ -31,9 +31,45 @@ function entry(id, label, take) {
   });
   /** @param {string} text */
   const write = (text) => {
-    if (document.activeElement !== field) field.value = text;
+    if (document.activeElement !== field && field.value !== text) field.value = text;
   };
   return { field, write };
+}
+
+/** Subject and mutual-information reduction of a decomposition. @param {Session} session @param {number} id */
+function makeMore(session, id) {
+  const subject = entry(`subject-${id}`, word("decomposition.subject"), (text) => {
+    session.setSubject(id, text.trim());
+    return true;
+  });
+  const information = entry(`information-${id}`, word("decomposition.information"), (text) => {
+    const value = text.trim() === "" ? null : enteredNumber(text);
+    if (value === null || Number.isFinite(value)) session.setInformation(id, value);
+    return value === null || Number.isFinite(value);
+  });
+  information.field.inputMode = "decimal";
+  const pairs = [
+    { field: subject.field, code: "decomposition.subject" },
+    { field: information.field, code: "decomposition.information" },
+  ].map(({ field, code }) => {
+    const label = make("label", "");
+    const hint = make("span", "", { class: "small" });
+    hint.append(...withTerms(word(`${code}-hint`)));
+    field.removeAttribute("aria-label");
+    label.append(make("span", word(code)), field);
+    const pair = make("div", "");
+    pair.append(label, hint);
+    return pair;
+  });
+  return {
+    pairs,
+    /** @param {Decomposition | undefined} one */
+    update(one) {
+      if (one === undefined) return;
+      subject.write(one.subject);
+      information.write(one.information === null ? "" : enteredText(one.information));
+    },
+  };
 }
 
 /** @param {Session} session @param {number} id @returns {Line} */
@@ -59,36 +95,19 @@ function makeLine(session, id) {
   const more = make("div", "", { class: "decomposition-more", id: `about-${id}`, hidden: "" });
   const unfold = make("button", word("decomposition.more"), { type: "button", class: "quiet", "aria-expanded": "false" });
   unfold.setAttribute("aria-controls", more.id);
+  /** What is folded away is made when it is first unfolded: of hundreds of lines it would be half of all elements. @type {ReturnType<typeof makeMore> | null} */
+  let about = null;
   unfold.addEventListener("click", () => {
+    if (about === null) more.append(...(about = makeMore(session, id)).pairs);
+    about.update(session.read().decompositions.find((one) => one.id === id));
     more.hidden = !more.hidden;
     unfold.setAttribute("aria-expanded", String(!more.hidden));
   });
   tools.append(open, unfold, remove);
-  const subject = entry(`subject-${id}`, word("decomposition.subject"), (text) => {
-    session.setSubject(id, text.trim());
-    return true;
-  });
-  const information = entry(`information-${id}`, word("decomposition.information"), (text) => {
-    const value = text.trim() === "" ? null : enteredNumber(text);
-    if (value === null || Number.isFinite(value)) session.setInformation(id, value);
-    return value === null || Number.isFinite(value);
-  });
-  information.field.inputMode = "decimal";
-  const pairs = [
-    { field: subject.field, code: "decomposition.subject" },
-    { field: information.field, code: "decomposition.information" },
-  ].map(({ field, code }) => {
-    const label = make("label", "");
-    const hint = make("span", "", { class: "small" });
-    hint.append(...withTerms(word(`${code}-hint`)));
-    field.removeAttribute("aria-label");
-    label.append(make("span", word(code)), field);
-    const pair = make("div", "");
-    pair.append(label, hint);
-    return pair;
-  });
-  more.append(...pairs);
   element.append(name.field, facts, progress, tools, failure, more);
+  /** What its buttons are named after. @type {string | null} */
+  let called = null;
+  let shown = false;
 
   return {
     element,
@@ -97,20 +116,21 @@ function makeLine(session, id) {
       const count = answer?.count ?? 0;
       const counts = answer === null ? null : countsOf(freshMaps(answer), threshold);
       name.write(one.name);
-      subject.write(one.subject);
-      information.write(one.information === null ? "" : enteredText(one.information));
-      facts.textContent = decompositionText({ ...one, count, counts, threshold, stopped });
+      about?.update(one);
+      rewrite(facts, decompositionText({ ...one, count, counts, threshold, stopped }));
       progress.hidden = stopped || fault !== null || (counts !== null && counts.here >= count);
       if (counts === null) progress.removeAttribute("value");
       else progress.value = counts.here / Math.max(1, count);
       // That of the one that is shown stands above its answer.
       failure.hidden = fault === null || now;
-      failure.textContent = fault === null ? "" : typeset(`${fault.message} ${fault.hint}`.trim());
+      rewrite(failure, fault === null ? "" : typeset(`${fault.message} ${fault.hint}`.trim()));
       element.toggleAttribute("data-now", now && !alone);
       open.hidden = alone;
-      open.textContent = word(now ? "decomposition.now" : "decomposition.open");
+      rewrite(open, word(now ? "decomposition.now" : "decomposition.open"));
       open.setAttribute("aria-pressed", String(now));
       remove.hidden = alone;
+      if (one.name === called && now === shown) return;
+      [called, shown] = [one.name, now];
       for (const button of [open, unfold, remove]) {
         button.setAttribute("aria-label", actionText(button.textContent ?? "", one.name));
       }

@@ -31,3 +31,8 @@ export function speak(text) {
   const spoken = need("spoken", HTMLElement);
   spoken.textContent = spoken.textContent === text ? `${text}${NO_BREAK}` : text;
 }
+
+/** Another text of an element; one that has it already is left alone, or it would be laid out again. @param {Element} element @param {string} text */
+export function rewrite(element, text) {
+  if (element.textContent !== text) element.textContent = text;
+}
