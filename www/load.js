@@ -4,7 +4,7 @@
  */
 
 import { LOADING } from "./text/loading.js";
-import { unpacked } from "./text/packed.js";
+import { unpackedText } from "./text/packed.js";
 
 /** The only policy of the page for the text of scripts; what may run is decided by the digest. */
 function scriptText() {
@@ -16,9 +16,8 @@ function scriptText() {
   return types === undefined ? rules : types.createPolicy("page", rules);
 }
 
-async function load() {
-  if (typeof DecompressionStream === "undefined") throw new Error(LOADING.old);
-  const text = await unpacked(document.getElementById("script")?.textContent ?? "").text();
+function load() {
+  const text = unpackedText(document.getElementById("script")?.textContent ?? "");
   const script = document.createElement("script");
   script.text = scriptText().createScript(text);
   document.body.append(script);
@@ -26,10 +25,13 @@ async function load() {
   if (document.getElementById("unstarted") !== null) throw new Error(LOADING.refused);
 }
 
-load().catch((error) => {
+try {
+  load();
+} catch (error) {
   document.documentElement.dataset.state = "failed";
   const place = document.getElementById("unstarted");
-  if (place === null) return;
-  place.textContent = `${LOADING.failed} ${error instanceof Error ? error.message : error}`;
-  place.hidden = false;
-});
+  if (place !== null) {
+    place.textContent = `${LOADING.failed} ${error instanceof Error ? error.message : error}`;
+    place.hidden = false;
+  }
+}

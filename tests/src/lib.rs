@@ -13,7 +13,7 @@ mod mixture;
 mod multistart;
 mod mutate;
 mod node;
-mod packed;
+pub mod packed;
 mod page;
 mod paper;
 mod picture;

@@ -1,4 +1,5 @@
 //! Text that the page carries packed, as `www/text/packed.js` unpacks it.
+use lzma_rust2::{LzmaOptions, LzmaReader, LzmaWriter};
 use std::io::Write;
 
 /// The characters that hold 13 bits by two.
@@ -6,19 +7,30 @@ fn letters() -> Vec<char> {
     (' '..='~').filter(|letter| !" \"<\\".contains(*letter)).collect()
 }
 
-/// Packs a text.
-pub fn packed(text: &str) -> String {
-    let mut packer = flate2::write::GzEncoder::new(Vec::new(), flate2::Compression::fast());
-    packer.write_all(text.as_bytes()).expect("memory takes it");
-    let bytes = packer.finish().expect("memory takes it");
+/// An LZMA file of a stated length.
+pub fn lzma(bytes: &[u8], options: &LzmaOptions) -> Vec<u8> {
+    let mut packer =
+        LzmaWriter::new_use_header(Vec::new(), options, Some(bytes.len() as u64)).expect("options that LZMA knows");
+    packer.write_all(bytes).expect("memory takes it");
+    packer.finish().expect("memory takes it")
+}
+
+/// Bytes as letters, their number before them.
+pub fn lettered(bytes: &[u8]) -> String {
     let bits: String = bytes.iter().map(|byte| format!("{byte:08b}")).collect();
-    let mut packed = format!("{} ", bytes.len());
+    let letters = letters();
+    let mut text = format!("{} ", bytes.len());
     for group in bits.as_bytes().chunks(13) {
         let bits = format!("{:0<13}", String::from_utf8_lossy(group));
         let number = usize::from_str_radix(&bits, 2).expect("bits");
-        packed.extend([letters()[number / 91], letters()[number % 91]]);
+        text.extend([letters[number / 91], letters[number % 91]]);
     }
-    packed
+    text
+}
+
+/// Packs a text.
+pub fn packed(text: &str) -> String {
+    lettered(&lzma(text.as_bytes(), &LzmaOptions::default()))
 }
 
 /// What a packed text was.
@@ -30,5 +42,6 @@ pub fn unpacked(packed: &str) -> String {
     let bits: String = digits.chunks(2).map(|pair| format!("{:013b}", 91 * pair[0] + pair[1])).collect();
     let byte = |at: usize| u8::from_str_radix(&bits[8 * at..8 * at + 8], 2).expect("bits");
     let bytes: Vec<u8> = (0..length.parse().expect("a number")).map(byte).collect();
-    std::io::read_to_string(flate2::read::GzDecoder::new(&bytes[..])).expect("gzip of a text")
+    let reader = LzmaReader::new_mem_limit(&bytes[..], 1 << 16, None).expect("a header");
+    std::io::read_to_string(reader).expect("LZMA of a text")
 }

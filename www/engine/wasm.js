@@ -4,5 +4,5 @@ import { unpacked } from "../text/packed.js";
 
 /** @param {string} text @returns {Promise<WebAssembly.Module>} */
 export async function compileWasm(text) {
-  return WebAssembly.compile(await unpacked(text).arrayBuffer());
+  return WebAssembly.compile(unpacked(text));
 }

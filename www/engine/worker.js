@@ -1,10 +1,12 @@
 /**
  * A worker of the page: one engine, the studies the page has named, and long runs cut into slices so that other
- * messages are answered in between. Its first message is the compiled module.
+ * messages are answered in between. Its first message is the compiled module, or the text that the page carries it in,
+ * which it unpacks and compiles for all: the page stays at hand meanwhile.
  */
 
 import { makeEngine } from "./engine.js";
-import { faultOf } from "./fault.js";
+import { faultOf, lacksMemory } from "./fault.js";
+import { compileWasm } from "./wasm.js";
 import { harmless } from "../text/figures.js";
 import { comparisonParts, reportHead, reportMap, reportTail } from "../export/json.js";
 
@@ -227,7 +229,21 @@ async function answerTask(message) {
   }
 }
 
+/** @param {string} carried */
+async function compileForAll(carried) {
+  try {
+    self.postMessage({ module: await compileWasm(carried) });
+  } catch (error) {
+    const code = error instanceof Error && lacksMemory(error) ? "memory-lacking" : "wasm-unavailable";
+    self.postMessage({ fault: { ...faultOf(error), code, details: String(error) } });
+  }
+}
+
 self.addEventListener("message", (/** @type {MessageEvent} */ event) => {
+  if (event.data.carried !== undefined) {
+    compileForAll(event.data.carried);
+    return;
+  }
   if (event.data.module !== undefined) {
     workerModule = event.data.module;
     return;

@@ -1,6 +1,8 @@
-/** What the page carries packed: gzip, then 13 bits in two of 91 characters. */
+/** What the page carries packed: LZMA, then 13 bits in two of 91 characters. */
 
-/** @param {string} text the number of bytes, a blank, and the characters @returns {Response} what was packed */
+import { unpackedLzma } from "./lzma.js";
+
+/** @param {string} text the number of bytes, a blank, and the characters @returns what was packed */
 export function unpacked(text) {
   const [length, letters] = text.trim().split(" ");
   const bytes = new Uint8Array(Number(length));
@@ -11,5 +13,10 @@ export function unpacked(text) {
     for (count += 13; count >= 8; count -= 8) bytes[to++] = bits >> (count - 8);
     bits &= 255;
   }
-  return new Response(new Blob([bytes]).stream().pipeThrough(new DecompressionStream("gzip")));
+  return unpackedLzma(bytes);
+}
+
+/** @param {string} text @returns what was packed, where that is a text */
+export function unpackedText(text) {
+  return new TextDecoder().decode(unpacked(text));
 }

@@ -1,7 +1,7 @@
 /** The foot of the page: which program this is, and the licences of what is built in. */
 
 import { programText } from "../text/faults.js";
-import { unpacked } from "../text/packed.js";
+import { unpackedText } from "../text/packed.js";
 import { need } from "./element.js";
 
 /** @import { Session } from "../session/session.js" */
@@ -15,8 +15,8 @@ export function showColophon(session) {
     },
   );
   const notices = need("notices", HTMLDetailsElement);
-  notices.addEventListener("toggle", async () => {
+  notices.addEventListener("toggle", () => {
     const carried = need("notices-text", HTMLScriptElement).text;
-    need("notices-shown", HTMLElement).textContent = await unpacked(carried.trim()).text();
+    need("notices-shown", HTMLElement).textContent = unpackedText(carried);
   });
 }

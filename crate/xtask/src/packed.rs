@@ -1,14 +1,14 @@
-//! Bytes as the text that the page carries them in: gzip, then 13 bits in two characters.
+//! Bytes as the text that the page carries them in: LZMA, then 13 bits in two characters.
 //!
 //! Two characters of 91 can tell 8281 things apart and hold 13 bits, so that the text is 16/13 as long as the bytes;
 //! base64 makes it 16/12. `www/text/packed.js` unpacks it.
 
-use std::io::Result;
-use zopfli::{Format, Options, compress};
+use lzma_rust2::{EncodeMode, LzmaOptions, LzmaWriter, MfType};
+use std::io::{Result, Write};
 
 /// The number of bytes, a blank, and the packed bytes; nothing in it ends a script or a string.
 pub fn packed(bytes: &[u8]) -> Result<String> {
-    let bytes = gzip(bytes)?;
+    let bytes = lzma(bytes)?;
     let mut text = format!("{} ", bytes.len());
     let (mut bits, mut count) = (0u32, 0);
     for &byte in &bytes {
@@ -35,12 +35,22 @@ fn pair(bits: u32) -> [char; 2] {
     })
 }
 
-/// Gzip without a date, so that equal bytes give equal bytes; the search for short matches takes seconds and saves a
-/// twenty-fifth.
-fn gzip(bytes: &[u8]) -> Result<Vec<u8>> {
-    let mut packed = Vec::new();
-    compress(Options::default(), Format::Gzip, bytes, &mut packed)?;
-    Ok(packed)
+/// An LZMA file of a stated length. What it holds is aligned to nothing.
+fn lzma(bytes: &[u8]) -> Result<Vec<u8>> {
+    let options = LzmaOptions {
+        dict_size: 1 << 20,
+        lc: LzmaOptions::LC_DEFAULT,
+        lp: 0,
+        pb: 0,
+        mode: EncodeMode::Normal,
+        nice_len: LzmaOptions::NICE_LEN_MAX,
+        mf: MfType::Bt4,
+        depth_limit: 1000,
+        preset_dict: None,
+    };
+    let mut writer = LzmaWriter::new_use_header(Vec::new(), &options, Some(bytes.len() as u64))?;
+    writer.write_all(bytes)?;
+    writer.finish()
 }
 
 #[cfg(test)]
@@ -48,9 +58,9 @@ mod tests {
     use super::*;
 
     #[test]
-    fn compressed_bytes_carry_no_date() {
-        let bytes = gzip(b"map").unwrap();
-        assert_eq!(bytes[..8], [0x1f, 0x8b, 8, 0, 0, 0, 0, 0]);
+    fn compressed_bytes_state_their_length() {
+        let bytes = lzma(b"map, map, map").unwrap();
+        assert_eq!(bytes[..14], [3, 0, 0, 16, 0, 13, 0, 0, 0, 0, 0, 0, 0, 0]);
     }
 
     #[test]

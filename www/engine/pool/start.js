@@ -1,8 +1,6 @@
-/** Starts the engine of the page from what the file carries: compiles once, hands the module to workers. */
+/** Starts the engine of the page from what the file carries: one worker compiles, all are handed the module. */
 
-import { unpacked } from "../../text/packed.js";
-import { compileWasm } from "../wasm.js";
-import { lacksMemory } from "../fault.js";
+import { unpackedText } from "../../text/packed.js";
 import { makePool } from "./pool.js";
 
 /** @param {string} id */
@@ -28,21 +26,45 @@ function workerAddresses() {
   return types === undefined ? rules : types.createPolicy("pool", rules);
 }
 
+/** @param {Worker} worker a fresh one @returns {Promise<WebAssembly.Module>} */
+function compiledBy(worker) {
+  return new Promise((resolve, reject) => {
+    worker.onmessage = ({ data: { module, fault } }) => {
+      if (module !== undefined) return resolve(module);
+      worker.terminate();
+      reject(unavailable(fault.code, fault.details));
+    };
+    worker.onerror = (event) => {
+      event.preventDefault();
+      reject(unavailable("worker-unavailable", event.message ?? ""));
+    };
+    worker.onmessageerror = () => reject(unavailable("wasm-unavailable", "the module could not be handed over"));
+    worker.postMessage({ carried: carriedText("wasm") });
+  });
+}
+
 export async function startPool() {
   if (typeof WebAssembly === "undefined") throw unavailable("wasm-unavailable", "WebAssembly is not defined");
-  /** @type {WebAssembly.Module} */
-  let module;
+  // What there is to see so far is shown first.
+  await new Promise((resolve) => setTimeout(resolve));
+  /** @type {() => Worker} */
+  let start;
+  /** @type {Worker | null} */
+  let compiling;
   try {
-    module = await compileWasm(carriedText("wasm"));
-  } catch (error) {
-    const code = error instanceof Error && lacksMemory(error) ? "memory-lacking" : "wasm-unavailable";
-    throw unavailable(code, error);
-  }
-  try {
-    const script = new Blob([await unpacked(carriedText("worker")).text()], { type: "text/javascript" });
+    const script = new Blob([unpackedText(carriedText("worker"))], { type: "text/javascript" });
     const address = workerAddresses().createScriptURL(URL.createObjectURL(script));
-    return makePool(module, () => new Worker(address));
+    start = () => new Worker(address);
+    compiling = start();
   } catch (error) {
     throw unavailable("worker-unavailable", error);
   }
+  const module = await compiledBy(compiling);
+  compiling.onmessage = compiling.onerror = compiling.onmessageerror = null;
+  // The worker that has compiled is the first of the pool.
+  return makePool(module, () => {
+    const worker = compiling ?? start();
+    compiling = null;
+    return worker;
+  });
 }
