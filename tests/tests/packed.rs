@@ -33,8 +33,7 @@ fn the_page_unpacks_what_was_packed_and_refuses_what_is_damaged() {
             cases.push(json!({ "bytes": bytes, "text": text }));
         }
     }
-    let printed = Node::with_engine()
-        .run("js/packed.mjs", &[], &json!(cases).to_string())
-        .unwrap_or_else(|why| panic!("{why}"));
+    let printed =
+        Node::with_engine().run("js/packed.mjs", &[], &json!(cases).to_string()).unwrap_or_else(|why| panic!("{why}"));
     assert_eq!(printed.trim(), "30 unpacked, 500 of 500 damaged ones refused, 300 of 300 cut off refused");
 }
