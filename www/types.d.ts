@@ -521,6 +521,12 @@ interface GlueStudy {
   /** The numerical rank of components, and what is to be said where it is less than their number. */
   rank(): { rank: number | null; note: ReportNote | null };
   assess(index: number, what: string[]): object;
+  populationKey(): string;
+  readonly populationSize: number;
+  population(kind: PopulationKind, first: number, last: number, milliseconds: number): Float64Array;
+  keepPopulation(kind: PopulationKind, numbers: Float64Array): void;
+  trust(index: number): Trust | null;
+  verdicts(first: number, last: number, milliseconds: number): (VerdictWord | null)[];
   sheet(index: number): Sheet;
   /** The same tables under other settings; nothing is read again. */
   with(settings: EngineSettings): GlueStudy;
@@ -590,6 +596,18 @@ interface Study {
   /** Lets a call use the glue's study, of the instance that is current. */
   lend<T>(job: (study: GlueStudy) => T): T;
   preamble(): InwardReport;
+  /** Equal for studies whose reference populations are the same. */
+  populationKey(): string;
+  /** Maps of each population. */
+  readonly populationSize: number;
+  /** Draws from `first` on for about so long, two numbers each: residual variance; eccentricity, negative at the boundary. */
+  population(kind: PopulationKind, first: number, milliseconds: number, last?: number): Float64Array;
+  /** Takes over draws 0, 1, … made elsewhere. */
+  keepPopulation(kind: PopulationKind, numbers: Float64Array): void;
+  /** Draws nothing; null for a map that cannot be fitted. */
+  trust(index: number): Trust | null;
+  /** From `first` on, before `last`, for about so long; null for a map that cannot be fitted. */
+  verdicts(first: number, last: number, milliseconds: number): (VerdictWord | null)[];
   sheet(index: number): Sheet;
 }
 

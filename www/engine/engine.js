@@ -171,6 +171,15 @@ export function makeEngine(compiled, keeps = true) {
         use((opened) => opened.rowsWithin(first, last, milliseconds)).map(unpackedRow),
       thumbnails: (indexes, size) => use((opened) => opened.thumbnails(indexes, size)),
       preamble: () => use((opened) => opened.preamble()),
+      populationKey: () => use((opened) => opened.populationKey()),
+      get populationSize() {
+        return use((opened) => opened.populationSize);
+      },
+      population: (kind, first, milliseconds, last = Infinity) =>
+        use((opened) => opened.population(kind, first, Math.min(last, opened.populationSize), milliseconds)),
+      keepPopulation: (kind, numbers) => use((opened) => opened.keepPopulation(kind, numbers)),
+      trust: (index) => use((opened) => opened.trust(index)),
+      verdicts: (first, last, milliseconds) => use((opened) => opened.verdicts(first, last, milliseconds)),
       sheet: (index) => use((opened) => opened.sheet(index)),
     };
   }

@@ -2,6 +2,7 @@
 
 mod compare;
 mod tables;
+mod trust;
 
 pub use compare::{Decomposition, compare};
 
@@ -24,6 +25,7 @@ use crate::understand::{ColumnsAre, Kind, Role, kind_of, role_of_files};
 use core::ops::Range;
 use std::sync::{Arc, Mutex, OnceLock, PoisonError};
 use tables::Tables;
+use trust::Simulated;
 
 /// What to analyse.
 #[derive(Clone, Debug, Default)]
@@ -85,6 +87,7 @@ pub struct Study {
     spline: OnceLock<Option<Spline>>,
     /// Of the thumbnails that were asked for last.
     raster: Arc<Mutex<Option<Raster>>>,
+    simulated: Simulated,
 }
 
 /// Small rasters of maps, without a fit.
@@ -169,7 +172,11 @@ impl Study {
         };
         let notes = tables.understood.notes.iter().chain(&placement.notes).cloned().collect();
         let raster = Arc::default();
-        let mut study = Self { tables, settings, placement, shells, fitter, notes, spline, raster };
+        let simulated = Simulated::default();
+        let mut study = Self { tables, settings, placement, shells, fitter, notes, spline, raster, simulated };
+        if let Some(before) = before {
+            study.simulated = Simulated::of(&study, before);
+        }
         study.note_the_rest();
         Ok(study)
     }
@@ -211,7 +218,7 @@ impl Study {
         self.notes.iter().map(Note::from).collect()
     }
 
-    /// The report without its maps.
+    /// The report without its maps, with the populations that are kept.
     pub fn preamble(&self) -> Report {
         Report {
             format: "inward-report",
@@ -222,6 +229,7 @@ impl Study {
             head: self.head(),
             electrodes: self.electrodes(),
             maps: Vec::new(),
+            populations: self.whole_populations(),
             notes: self.notes(),
             understood: self.understood(),
         }
@@ -289,12 +297,17 @@ impl Study {
         }))
     }
 
-    /// Adds what `what` names to the fit of one map: nothing can be named yet.
+    /// Adds what `what` names to the fit of one map, besides what the settings name. Populations that are not kept are drawn
+    /// first, which takes seconds.
     ///
     /// # Errors
     /// Those of [`Self::fit`].
-    pub fn assess(&self, index: usize, _what: &[Assessment]) -> Result<MapReport, Error> {
-        self.fit(index)
+    pub fn assess(&self, index: usize, what: &[Assessment]) -> Result<MapReport, Error> {
+        let mut map = self.fit(index)?;
+        if let MapReport::Fitted(map) = &mut map {
+            self.assessed(index, map, what);
+        }
+        Ok(map)
     }
 
     /// The answer for one map, counted from 0, in words and numbers; `map` is its fit.
@@ -447,7 +460,10 @@ impl Study {
 
     fn reported(&self, index: usize, outcome: Result<FittedMap, Error>) -> MapReport {
         match outcome {
-            Ok(map) => MapReport::Fitted(Box::new(map)),
+            Ok(mut map) => {
+                self.assessed(index, &mut map, &self.settings.assess);
+                MapReport::Fitted(Box::new(map))
+            }
             Err(error) => MapReport::Failed {
                 name: self.tables.understood.maps.names[index].clone(),
                 error: Box::new((&error).into()),
@@ -502,6 +518,9 @@ impl Study {
             measured,
             projected,
             residual,
+            region: None,
+            populations: None,
+            verdict: None,
         }
     }
 

@@ -274,6 +274,10 @@ codes! {
     MapIndex = "map-index",
     /// Error: a standard deviation of an activation that is no positive number.
     ActivationSdInvalid = "activation-sd-invalid",
+    /// Error: a setting outside its range.
+    SettingRange = "setting-range",
+    /// Error: verdicts are asked for before the reference populations are drawn.
+    PopulationsLacking = "populations-lacking",
     /// Error: two decompositions have too few electrodes in common to compare their maps.
     ElectrodesUncommon = "electrodes-uncommon",
     /// Note: x right, y front, z up was assumed.

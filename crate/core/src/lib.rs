@@ -7,7 +7,7 @@
 //! Every result is the same, bit for bit, natively and in WebAssembly: transcendental functions come from `libm`,
 //! sums run in a written order, and no arithmetic depends on the processor it runs on.
 
-pub use inward_numerics::{fit, forward, math, scene};
+pub use inward_numerics::{fit, forward, math, scene, simulate};
 
 pub mod finding;
 

@@ -10,4 +10,6 @@ pub mod forward;
 
 pub mod fit;
 
+pub mod simulate;
+
 pub mod scene;

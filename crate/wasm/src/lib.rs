@@ -5,6 +5,7 @@ mod clock;
 mod compare;
 mod picture;
 mod row;
+mod trust;
 mod wire;
 
 use clock::Clock;
@@ -207,7 +208,7 @@ impl Study {
         plain(&self.0.rank(None))
     }
 
-    /// The fit of one map with what is named added to it.
+    /// The fit of one map with what is named added to it: `region`, `populations`, `verdict`.
     pub fn assess(&self, index: JsValue, what: JsValue) -> Result<JsValue, JsValue> {
         let index = wire::index(&index, self.0.count())?;
         let what = match what.is_undefined() {

@@ -7,7 +7,7 @@ use anyhow::{Context, Result, bail};
 
 /// The modules of the numerics and of the core, each of which imports only from those before it; `use crate::` finds
 /// both from the core, which hands the numerics on.
-const ORDER: [&str; 15] = [
+const ORDER: [&str; 16] = [
     "math",
     "shells",
     "finding",
@@ -19,6 +19,7 @@ const ORDER: [&str; 15] = [
     "placement",
     "forward",
     "fit",
+    "simulate",
     "assess",
     "scene",
     "report",

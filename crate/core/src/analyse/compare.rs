@@ -94,6 +94,7 @@ pub fn compare(
             head: report.head,
             electrodes: report.electrodes,
             maps,
+            populations: report.populations,
             notes: report.notes,
             understood: report.understood,
             near_dipolar: NearDipolar {

@@ -1,8 +1,15 @@
-//! What fits are worth: residual variance adjusted for the degrees of freedom, and how many of many are near-dipolar.
+//! What fits are worth: residual variance adjusted for the degrees of freedom, how many of many are near-dipolar, how a map
+//! stands among simulated ones and what it may count as.
 
+mod origin;
+mod reference;
 mod share;
+mod verdict;
 
+pub use origin::{Hint, hints};
+pub use reference::Reference;
 pub use share::Sample;
+pub use verdict::{Bar, Judged, Reason, ReasonCode, Word, lone_share, usual_spacing_deg};
 
 /// Degrees of freedom of one dipole's fit to `electrodes` average-referenced values: one goes with the reference, six
 /// with position and moment.

@@ -2,8 +2,8 @@
 
 use super::number::{hundredths, millimetres};
 use super::{
-    Difference, ElectrodeReport, ErrorReport, GroupSummary, HeadReport, Input, MapReport, Note, Program, Settings,
-    UnderstoodReport,
+    Difference, ElectrodeReport, ErrorReport, GroupSummary, HeadReport, Input, MapReport, Note, PopulationReport,
+    Program, Settings, UnderstoodReport,
 };
 use serde::Serialize;
 
@@ -47,6 +47,8 @@ pub struct DecompositionReport {
     pub electrodes: Vec<ElectrodeReport>,
     /// One entry for each map.
     pub maps: Vec<MapReport>,
+    /// Simulated maps that maps were set against.
+    pub populations: Vec<PopulationReport>,
     /// What was assumed and what did not match.
     pub notes: Vec<Note>,
     /// What was made of its files.

@@ -214,6 +214,14 @@ pub fn message(finding: &Finding) -> String {
             "The standard deviation given for the activation of the map “{}” is not a number from 1e-100 to 1e100.",
             value("map")
         ),
+        Code::SettingRange => format!(
+            "The setting {} is {}; it must lie between {} and {}.",
+            value("setting"),
+            value("value"),
+            value("least"),
+            value("most")
+        ),
+        Code::PopulationsLacking => format!("There are no reference maps of the kind “{}” yet.", value("kind")),
         Code::AxesAssumed => {
             let assumed = "Axes were assumed: x to the right, y to the front, z up.";
             match finding.value("named") {
@@ -540,6 +548,10 @@ pub fn hint(code: Code) -> &'static str {
         }
         Code::ActivationSdInvalid => {
             "Give a positive number in the unit of the activation, or leave it open; a list has one for each map, in their order."
+        }
+        Code::SettingRange => "Give a number in this range, or leave the setting out for its default.",
+        Code::PopulationsLacking => {
+            "Draw the population of each kind and hand it over first, or ask for the assessment, which draws them."
         }
         _ => "",
     }

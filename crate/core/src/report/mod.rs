@@ -9,6 +9,8 @@ mod row;
 mod settings;
 mod sheet;
 mod summary;
+mod trust;
+mod trust_settings;
 
 pub use choices::{ChoiceOffer, ChoiceReport, OptionReport, offered};
 pub use comparison::{Comparison, DecompositionReport, Match, NearDipolar, Pair, RankReport};
@@ -19,6 +21,11 @@ pub use settings::{Assessment, HeadSettings, Polarity, Settings};
 pub use sheet::{Alternative, HeadSheet, Row, Scale, Sheet, SheetElectrode, Site};
 pub(crate) use summary::full_name;
 pub use summary::{Curve, Difference, GroupSummary, Member, MemberSummary, Questions, Summary};
+pub use trust::{
+    Among, CauseReport, DrawnEllipsoid, NoiseOnly, Percentiles, PopulationReport, ReasonReport, RegionReport, Repeats,
+    Structure, Trust, TrustPopulation, TrustRegion, TrustVerdict, VerdictReport, rule, verdict_title,
+};
+pub use trust_settings::{ErrorSettings, Limits, NoiseSettings, SourceSettings};
 
 use crate::finding::{Code, Error, Finding, Place, Value};
 use crate::fit::Stopped;
@@ -50,6 +57,8 @@ pub struct Report {
     pub electrodes: Vec<ElectrodeReport>,
     /// One entry for each map, in the order of the table.
     pub maps: Vec<MapReport>,
+    /// Simulated maps that maps were set against; empty unless they were asked for.
+    pub populations: Vec<PopulationReport>,
     /// What was assumed and what did not match.
     pub notes: Vec<Note>,
     /// What was made of the files, with everything that can be changed.
@@ -197,6 +206,12 @@ pub struct FittedMap {
     pub projected: Vec<f64>,
     /// The difference.
     pub residual: Vec<f64>,
+    /// Where the dipole may be; absent unless asked for, as what follows.
+    pub region: Option<RegionReport>,
+    /// The map among simulated ones.
+    pub populations: Option<Vec<Among>>,
+    /// What it may count as.
+    pub verdict: Option<VerdictReport>,
 }
 
 impl FittedMap {

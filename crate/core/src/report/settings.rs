@@ -1,3 +1,4 @@
+use super::trust_settings::{self, ErrorSettings, Limits, NoiseSettings, SourceSettings};
 use crate::finding::{Code, Error, Finding, Place};
 use crate::head::{AxesName, LengthUnit, ShellSpec};
 use crate::map::MapUnit;
@@ -36,6 +37,14 @@ pub struct Settings {
     pub activation_sd: Vec<Option<f64>>,
     /// What to add to each fit.
     pub assess: Vec<Assessment>,
+    /// How far head and electrodes may be off, for region and populations.
+    pub errors: ErrorSettings,
+    /// Standard deviation of the noise of a map, where it is known.
+    pub noise: Option<NoiseSettings>,
+    /// Sources of the reference populations.
+    pub sources: SourceSettings,
+    /// Where verdicts change.
+    pub limits: Limits,
     /// What is said about single files, by their names.
     pub files: BTreeMap<String, FileWishes>,
     /// Unit of the positions.
@@ -80,19 +89,27 @@ pub struct HeadSettings {
 }
 
 /// Standard deviations that are computed with, as for numbers of tables.
-const SIZES: core::ops::RangeInclusive<f64> = 1e-100..=1e100;
+pub(super) const SIZES: core::ops::RangeInclusive<f64> = 1e-100..=1e100;
 
-/// What can be added to a fit: nothing yet.
+/// What can be added to a fit.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
 #[serde(rename_all = "kebab-case")]
-pub enum Assessment {}
+pub enum Assessment {
+    /// Where the dipole may be when head, electrodes and map are not exact.
+    Region,
+    /// The map among simulated ones.
+    Populations,
+    /// What it may count as.
+    Verdict,
+}
 
 impl Settings {
-    /// Checks what names maps by their number.
+    /// Checks what names maps by their number, and what lies in a range.
     ///
     /// # Errors
-    /// `map-index`, `activation-sd-invalid`.
+    /// `map-index`, `activation-sd-invalid`, `setting-range`.
     pub fn check(&self, maps: &[String]) -> Result<(), Error> {
+        trust_settings::check(&self.errors, self.noise, &self.sources, &self.limits)?;
         let finding = |code, index: usize| Finding::new(code).at(Place::input("settings")).with("index", index);
         let named = self.flip.iter().copied().chain(self.activation_sd.len().checked_sub(1));
         if let Some(index) = named.into_iter().find(|index| *index >= maps.len()) {

@@ -434,7 +434,7 @@ fn head_sheet(head: &HeadReport) -> HeadSheet {
     HeadSheet { title, source, rows }
 }
 
-fn row(
+pub(super) fn row(
     code: impl Into<Cow<'static, str>>,
     label: impl Into<Cow<'static, str>>,
     value: String,
@@ -473,7 +473,7 @@ fn described(what: &str, sites: &[&Site], value: fn(&Site) -> f64, unit: Written
 /// The unit in which values of a map are written, and what they are multiplied by for it.
 #[derive(Clone, Copy)]
 pub(super) struct Written {
-    name: &'static str,
+    pub name: &'static str,
     pub factor: f64,
 }
 

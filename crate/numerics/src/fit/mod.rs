@@ -6,13 +6,18 @@
 
 mod grid;
 mod objective;
+mod profile;
 mod refine;
+mod tangent;
 
-use crate::forward::{Field, LeadField};
-use crate::math::{Single, Vec3, centre, dot, mean};
+use crate::forward::{Field, LeadField, along};
+use crate::math::lanes::splat3;
+use crate::math::{Lanes, Single, Vec3, centre, dot, mean};
 use grid::{Explained, Grid};
 use objective::Objective;
-use refine::{DOUBLE, Precision, Region, SINGLE, least, refine};
+pub use profile::Profile;
+use refine::{DOUBLE, NEAR, Precision, Region, SINGLE, least, refine};
+pub use tangent::Tangent;
 
 /// A fitted dipole, in head coordinates.
 #[derive(Clone, Debug, PartialEq)]
@@ -135,6 +140,32 @@ impl Fitter {
         let best = fits.into_iter().reduce(Fit::better)?;
         let evaluations = self.grid.count() + surface.evaluations() + exact.evaluations();
         Some(Fit { evaluations, ..best })
+    }
+
+    /// The minimum that a search from this position leads to, to a thousandth of the reach: where a simulated error moves a
+    /// fit to. `None` for a map that is the same everywhere.
+    pub fn follow(&self, map: &[f64], start: Vec3) -> Option<Fit> {
+        let (map, size) = normalise(map)?;
+        let region = Region { reach: self.field.reach(), step: self.grid.step() };
+        let mut surface = Objective::new(self.field.field(), &map);
+        let fit = refine(&mut surface, start, region, NEAR, &[])?;
+        Some(Fit { moment: fit.moment * (size / self.field.scale()), evaluations: surface.evaluations(), ..fit })
+    }
+
+    /// The map of several dipoles, up to a factor, with the precision of a search: 10⁻³ of its largest value.
+    pub fn rough_sum(&self, sources: impl Iterator<Item = (Vec3, Vec3)>) -> Vec<f64> {
+        let mut potentials = Vec::new();
+        let mut sum = vec![Single::default(); self.rough.blocks().len()];
+        for (position, moment) in sources {
+            self.rough.potentials::<false>(position, &mut potentials);
+            let (m, radial) = (splat3(moment), <Single as Lanes>::splat(2.0 * position.dot(moment)));
+            for ((sum, e), t) in sum.iter_mut().zip(self.rough.blocks()).zip(&potentials) {
+                *sum += t.s * along(e, &m) + t.u * radial;
+            }
+        }
+        let mut map = vec![0.0; self.field.count()];
+        map.chunks_mut(<Single as Lanes>::WIDTH).zip(sum).for_each(|(values, sum)| sum.unpack(values));
+        map
     }
 
     /// The potential of a dipole in µV, average-referenced.

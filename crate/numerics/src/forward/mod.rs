@@ -8,12 +8,14 @@
 //! - [`Series`]: the infinite sum of Legendre terms, cut off by a bound of its tail; the measure of all else.
 //! - [`Images`]: a few image sources whose strengths are solved for, with a proven bound of their error; quick.
 
+mod cut;
 mod field;
 mod images;
 mod lead_field;
 mod potential;
 mod series;
 
+pub use cut::CutSeries;
 pub(crate) use field::{Field, along};
 pub use images::Images;
 pub use lead_field::LeadField;

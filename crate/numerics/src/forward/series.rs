@@ -102,7 +102,7 @@ impl Series {
 
 /// gₙ of one degree: potential v and radial current j, both continuous, are carried inwards from v = 1, j = 0 on the
 /// scalp. Each step leaves out the common factor (inner / outer radius)^−(n+1), which cancels at the end.
-fn gain(n: f64, shells: &Shells) -> f64 {
+pub(super) fn gain(n: f64, shells: &Shells) -> f64 {
     let specs = shells.specs();
     let (mut v, mut j) = (1.0, 0.0);
     for pair in specs.windows(2).rev() {

@@ -25,18 +25,24 @@ impl Cholesky {
         Some(Self { rows })
     }
 
-    /// Solves A x = b.
-    pub fn solve(&self, b: &[f64]) -> Vec<f64> {
-        let mut x = b.to_vec();
-        for (i, row) in self.rows.iter().enumerate() {
-            x[i] = (x[i] - dot(&row[..i], &x[..i])) / row[i];
-        }
+    /// L⁻ᵀ z: of the covariance A⁻¹ if z is of independent numbers of unit variance.
+    pub fn spread(&self, z: &[f64]) -> Vec<f64> {
+        let mut x = z.to_vec();
         for (i, row) in self.rows.iter().enumerate().rev() {
             x[i] /= row[i];
             let value = x[i];
             x[..i].iter_mut().zip(row).for_each(|(x, l)| *x -= l * value);
         }
         x
+    }
+
+    /// Solves A x = b.
+    pub fn solve(&self, b: &[f64]) -> Vec<f64> {
+        let mut x = b.to_vec();
+        for (i, row) in self.rows.iter().enumerate() {
+            x[i] = (x[i] - dot(&row[..i], &x[..i])) / row[i];
+        }
+        self.spread(&x)
     }
 }
 
