@@ -103,6 +103,7 @@ interface SourceSettings {
 /** Limits of the verdict. */
 interface LimitSettings {
   oneDipole?: number;
+  ruledOut?: number;
   others?: number;
   loneElectrode?: number;
   coverageDeg?: number | null;

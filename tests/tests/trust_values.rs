@@ -115,7 +115,8 @@ fn independent_noise_gives_the_cramer_rao_bound() {
     .unwrap();
     let electrodes = "label\tx\ty\tz\n".to_owned() + &electrodes;
     let maps = "label\tm\n".to_owned() + &maps;
-    let request = Request { electrodes: Some(electrodes.as_bytes()), maps: maps.as_bytes(), settings, ..Request::default() };
+    let request =
+        Request { electrodes: Some(electrodes.as_bytes()), maps: maps.as_bytes(), settings, ..Request::default() };
     let study = Study::open(&request).unwrap();
     let MapReport::Fitted(map) = study.assess(0, &[Assessment::Region]).unwrap() else { panic!("no fit") };
     let noise = map.region.unwrap().noise_only;

@@ -207,6 +207,7 @@ impl Study {
             rule: self.source_rule(),
             directions,
             one_dipole: limits.one_dipole,
+            ruled_out: limits.ruled_out,
             others: limits.others,
             lone_electrode: limits.lone_electrode,
             coverage_deg: limits.coverage_deg.unwrap_or_else(|| usual_spacing_deg(directions)),

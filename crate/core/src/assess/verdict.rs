@@ -15,9 +15,9 @@ pub enum Word {
     BelowTheBrain,
     /// Fitted as single dipoles are, and as several sources seldom are.
     Dipolar,
-    /// Fitted as single dipoles are, but several sources are too.
+    /// Fitted as single dipoles are, but several sources are too; or as few single dipoles are.
     Undecided,
-    /// Fitted worse than single dipoles are.
+    /// Fitted worse than single dipoles are, but for one in a thousand.
     NotDipolar,
 }
 
@@ -42,9 +42,12 @@ pub enum ReasonCode {
     AtBoundary,
     /// Height above the floor of the brain in radii of the innermost shell, below 0.
     BelowFloor,
-    /// Share of simulated single dipoles with a lower residual variance, within the limit.
+    /// Share of simulated single dipoles with a lower residual variance, of all or of those at about the same depth,
+    /// whichever is less; within the limit.
     LikeOneDipole,
-    /// The same over the limit.
+    /// The same over that limit, but not over the one that rules single dipoles out.
+    SeldomOneDipole,
+    /// The same over both.
     UnlikeOneDipole,
     /// Share of simulated pairs with a lower residual variance, within the limit.
     RareInTwo,
@@ -86,7 +89,9 @@ pub struct Bar<'a> {
     pub directions: &'a [Vec3],
     /// Largest share of simulated single dipoles with a lower residual variance.
     pub one_dipole: f64,
-    /// The same of pairs and hundreds.
+    /// The share of them beyond which a map is none.
+    pub ruled_out: f64,
+    /// Largest share of pairs and hundreds.
     pub others: f64,
     /// Largest share of power on one electrode.
     pub lone_electrode: f64,
@@ -98,6 +103,9 @@ impl Bar<'_> {
     /// The first verdict that holds, with all that speaks for it or for caution.
     pub fn judge(&self, fit: &Judged) -> (Word, Vec<Reason>) {
         let [one, two, hundred] = self.references.map(|reference| reference.share_lower(fit.residual_variance));
+        // An error of the head leaves more over where a source is shallow: at its own depth a map may be usual.
+        let here = self.references[0].share_lower_at(fit.residual_variance, fit.position.norm());
+        let one = one.min(here);
         let alone = lone_share(fit.measured);
         let above = fit.position[2] - self.rule.floor[0] - self.rule.floor[1] * fit.position[1];
         let mut reasons = Vec::new();
@@ -112,8 +120,13 @@ impl Bar<'_> {
             give(ReasonCode::BelowFloor, above, Some(0.0));
         }
         let single = one <= self.one_dipole;
-        let code = if single { ReasonCode::LikeOneDipole } else { ReasonCode::UnlikeOneDipole };
-        give(code, one, Some(self.one_dipole));
+        let none = one > self.ruled_out;
+        let (code, limit) = match (single, none) {
+            (true, _) => (ReasonCode::LikeOneDipole, self.one_dipole),
+            (false, false) => (ReasonCode::SeldomOneDipole, self.one_dipole),
+            (false, true) => (ReasonCode::UnlikeOneDipole, self.ruled_out),
+        };
+        give(code, one, Some(limit));
         let code = if two <= self.others { ReasonCode::RareInTwo } else { ReasonCode::UsualInTwo };
         give(code, two, Some(self.others));
         let code = if hundred <= self.others { ReasonCode::RareInHundred } else { ReasonCode::UsualInHundred };
@@ -130,9 +143,9 @@ impl Bar<'_> {
             Word::Edge
         } else if above < 0.0 {
             Word::BelowTheBrain
-        } else if !single {
+        } else if none {
             Word::NotDipolar
-        } else if two <= self.others && hundred <= self.others {
+        } else if single && two <= self.others && hundred <= self.others {
             Word::Dipolar
         } else {
             Word::Undecided

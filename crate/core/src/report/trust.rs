@@ -219,7 +219,12 @@ impl VerdictReport {
     pub fn new(word: Word, reasons: &[Reason], hints: &[Hint]) -> Self {
         Self {
             word,
-            text: verdict_text(word).into(),
+            text: match reasons.iter().any(|reason| reason.code == ReasonCode::SeldomOneDipole)
+                && word == Word::Undecided
+            {
+                true => SELDOM.into(),
+                false => verdict_text(word).into(),
+            },
             reasons: reasons.iter().map(reason).collect(),
             hints: hints.iter().map(|&code| HintReport { code, text: hint_text(code) }).collect(),
         }
@@ -237,6 +242,10 @@ pub fn verdict_title(word: Word) -> &'static str {
         Word::NotDipolar => "not dipolar",
     }
 }
+
+/// Of a map that is undecided because few single dipoles leave as much over.
+const SELDOM: &str =
+    "Undecided: more is left over than with most simulated single dipoles, but a few of them leave as much.";
 
 fn verdict_text(word: Word) -> &'static str {
     match word {
@@ -256,7 +265,7 @@ fn verdict_text(word: Word) -> &'static str {
             "Undecided: one equivalent dipole fits as well as with simulated single dipoles, but several sources often fit as well here."
         }
         Word::NotDipolar => {
-            "Not dipolar with this head and these electrodes: more is left over than with nearly all simulated single dipoles."
+            "Not dipolar with this head and these electrodes: more is left over than with practically all simulated single dipoles."
         }
     }
 }
@@ -279,6 +288,7 @@ fn reason(reason: &Reason) -> ReasonReport {
             format!("The position lies {} brain radii below the floor of the modelled brain.", hundredths(-value))
         }
         ReasonCode::LikeOneDipole => among("single dipoles", "within"),
+        ReasonCode::SeldomOneDipole => among("single dipoles", "over"),
         ReasonCode::UnlikeOneDipole => among("single dipoles", "over"),
         ReasonCode::RareInTwo => among("pairs of dipoles", "within"),
         ReasonCode::UsualInTwo => among("pairs of dipoles", "over"),

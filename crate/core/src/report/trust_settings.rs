@@ -98,8 +98,11 @@ impl Default for SourceSettings {
 #[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
 #[serde(deny_unknown_fields, default, rename_all = "camelCase")]
 pub struct Limits {
-    /// Share of simulated single dipoles with a lower residual variance, up to which a map may be one.
+    /// Share of simulated single dipoles with a lower residual variance, of all or of those at about the same depth, up to
+    /// which a map may be one.
     pub one_dipole: f64,
+    /// That share beyond which a map is none.
+    pub ruled_out: f64,
     /// Share of simulated pairs, and of simulated hundreds, with a lower residual variance, up to which a map is not taken
     /// for one of theirs.
     pub others: f64,
@@ -112,7 +115,7 @@ pub struct Limits {
 
 impl Default for Limits {
     fn default() -> Self {
-        Self { one_dipole: 0.95, others: 0.05, lone_electrode: 0.5, coverage_deg: None }
+        Self { one_dipole: 0.95, ruled_out: 0.999, others: 0.05, lone_electrode: 0.5, coverage_deg: None }
     }
 }
 
@@ -153,6 +156,7 @@ pub(super) fn check(
     within("sources.floor[0]", height, -2.0..=highest)?;
     within("sources.noise", sources.noise, 0.0..=0.5)?;
     within("limits.oneDipole", limits.one_dipole, 0.5..=1.0)?;
+    within("limits.ruledOut", limits.ruled_out, limits.one_dipole..=1.0)?;
     within("limits.others", limits.others, 0.0..=0.5)?;
     within("limits.loneElectrode", limits.lone_electrode, 0.1..=1.0)?;
     limits.coverage_deg.map_or(Ok(()), |angle| within("limits.coverageDeg", angle, 1.0..=180.0))
