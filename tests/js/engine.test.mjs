@@ -45,13 +45,13 @@ function assertPlain(value, path) {
 }
 
 const KEYS = {
-  report: "electrodes format head inputs maps notes program settings understood version",
+  report: "electrodes format head inputs maps notes populations program settings understood version",
   program: "build name version",
   input: "name sha256",
   head: "axes centre_is_fitted centre_mm fit_max_mm fit_rms_mm name radius_is_fitted radius_mm shells unusual",
   shell: "conductivity_s_per_m outer_radius_mm tissue",
   electrode: "label position_mm used",
-  map: "activation_sd adjusted_rv degrees_of_freedom dipole fit flipped measured name projected residual residual_variance variance_explained",
+  map: "activation_sd adjusted_rv degrees_of_freedom dipole fit flipped measured name populations projected region residual residual_variance variance_explained verdict",
   dipole:
     "at_boundary canonical_direction canonical_mm depth_mm direction eccentricity nearest_site polarity position_mm radial_share side strength strength_comparable strength_unit",
   fit: "evaluations stopped_because",
@@ -496,7 +496,7 @@ test("rows are the fits as lines of a table, thumbnails their maps", () => {
 const COMPARISON_KEYS = {
   comparison: "decompositions differences format groups notes pairs program version",
   decomposition:
-    "electrodes fitted head information inputs maps median_rv name near_dipolar notes rank settings subject understood",
+    "electrodes fitted head information inputs maps median_rv name near_dipolar notes populations rank settings subject understood",
   nearDipolar: "at count share weighted_share",
   pair: "a b electrodes error matches unmatched_a unmatched_b",
   match: "correlation distance_mm index_a index_b",
@@ -610,4 +610,42 @@ test("groups of subjects have intervals, and wrong comparisons are refused by na
   assert.deepEqual([empty.code, empty.decomposition], ["input-empty", "empty"]);
   assert.equal(thrown(() => engine.compare("x")).code, "settings-unknown");
   assert.deepEqual(engine.compare([]).decompositions, []);
+});
+
+test("populations can be drawn in pieces elsewhere and handed over", () => {
+  const settings = { sources: { draws: 1000, seed: 3 } };
+  const study = engine.open({ electrodes, maps, settings });
+  const error = thrown(() => study.verdicts(0, study.count, 1000));
+  assert.equal(error.code, "populations-lacking");
+  assert.equal(study.trust(0).verdict, null);
+  assert.equal(thrown(() => study.population("three-dipoles", 0, 10)).code, "settings-unknown");
+  assert.equal(thrown(() => study.keepPopulation("noise", new Float64Array([0.5]))).code, "settings-unknown");
+  const kinds = ["noise", "one-dipole", "two-dipoles", "five-dipoles", "twenty-dipoles", "hundred-dipoles"];
+  const other = engine.open({ electrodes, maps, settings });
+  assert.equal(other.populationKey(), study.populationKey());
+  assert.notEqual(study.with({ ...settings, exclude: ["Cz"] }).populationKey(), study.populationKey());
+  for (const kind of kinds) {
+    const all = study.population(kind, 0, Infinity);
+    assert.equal(all.length, 2 * study.populationSize);
+    const pieces = [study.population(kind, 0, 0), study.population(kind, 990, Infinity)];
+    assert.ok(pieces[0].length > 0 && pieces[0].length < 200);
+    assert.deepEqual(pieces[0], all.slice(0, pieces[0].length));
+    assert.deepEqual(pieces[1], all.slice(1980));
+    assert.deepEqual(study.population(kind, 5, Infinity, 30), all.slice(10, 60));
+    study.keepPopulation(kind, all);
+  }
+  const what = ["region", "populations", "verdict"];
+  const handed = study.assess(0, what);
+  // The other study draws by itself.
+  assert.deepEqual(other.assess(0, what), handed);
+  assertPlain(handed, "map");
+  assert.deepEqual(study.preamble().populations.map(({ kind, draws }) => [kind, draws]), kinds.map((kind) => [kind, 1000]));
+  assert.deepEqual(study.fit(0), { ...handed, region: null, populations: null, verdict: null });
+  assert.deepEqual(study.verdicts(0, study.count, 1000)[0], handed.verdict.word);
+  const trust = study.trust(0);
+  assert.deepEqual([trust.verdict.word, trust.populations.length], [handed.verdict.word, 6]);
+  assert.equal(trust.region.cloud.length, handed.region.draws);
+  // Other electrodes have other populations; the same ones share what is kept.
+  assert.equal(study.with({ ...settings, exclude: ["Cz"] }).trust(0).verdict, null);
+  assert.deepEqual(study.with({ ...settings, polarity: "declared" }).trust(0).verdict, trust.verdict);
 });

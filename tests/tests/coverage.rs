@@ -364,9 +364,9 @@ fn planted_truths_are_judged_as_they_are() {
         let mut lone = vec![0.0; count];
         lone[7] = 5.0;
         assert_eq!(court.word(&lone), Word::LoneElectrode);
-        // An eye: low at the front, outside the brain, pointing forward.
-        let eye = Vec3::new(0.3, 0.68, -0.35);
-        let word = court.word(&bench.map(nominal, &plain, eye, Vec3::new(0.0, 1.0, 0.1)));
+        // Two eyes that look up: low at the front, where there is no brain.
+        let eyes = [-0.3, 0.3].map(|x| bench.map(nominal, &plain, Vec3::new(x, 0.68, -0.35), Vec3::new(0.0, 0.8, 0.6)));
+        let word = court.word(&eyes[0].iter().zip(&eyes[1]).map(|(a, b)| a + b).collect::<Vec<_>>());
         assert!([Word::BelowTheBrain, Word::Edge].contains(&word), "{count}: {word:?}");
     }
 }

@@ -94,6 +94,10 @@ fn native_and_wasm_give_equal_bits() {
             json!({ "mapUnit": "V", "exclude": ["Cz", "T7"], "flip": [1, 2], "activationSd": [null, 0.3] }),
         ),
     ];
+    let trust = json!({
+        "assess": ["region", "populations", "verdict"], "sources": { "draws": 1000, "seed": 7 }, "noise": { "singleTrialSd": 9.5, "trials": 100 },
+    });
+    cases.push(case(Some(&example("watch_electrodes.tsv")), &example("watch_maps.tsv"), trust));
     // A head that lies obliquely in its axes, and its mirror image.
     let set = Electrodes::set(32);
     let turn = draw.rotation();

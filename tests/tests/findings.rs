@@ -7,6 +7,7 @@ use inward_core::report::{ErrorReport, HeadSettings, Note, Questions, hint};
 use inward_core::understand::{Baseline, ColumnName, ColumnWishes, ColumnsAre, FileWishes, MapsAre, Times};
 use inward_core::{Code, Decomposition, Error, MapReport, Report, Request, Settings, Study, Vec3, analyse, compare};
 use inward_tests::{Draw, Electrodes, electrodes_and_maps, example, sample};
+use serde_json::json;
 use std::collections::BTreeSet;
 
 fn electrodes() -> String {
@@ -289,6 +290,23 @@ fn errors() -> Vec<(&'static str, ErrorReport)> {
         let settings = Settings { activation_sd: vec![None, Some(sd)], ..plain() };
         all.push(("activation-sd-invalid", error(Some(&e), &m, settings)));
     }
+    for (key, value) in [
+        ("errors", json!({ "electrodesMm": -1 })),
+        ("errors", json!({ "skullRatio": [40, 15] })),
+        ("errors", json!({ "draws": 50 })),
+        ("noise", json!({ "sd": 0 })),
+        ("noise", json!({ "singleTrialSd": 3, "trials": 0 })),
+        ("sources", json!({ "draws": 10 })),
+        ("sources", json!({ "floor": [0.6, 0] })),
+        ("sources", json!({ "maxEccentricity": 0.99 })),
+        ("limits", json!({ "oneDipole": 0.99, "ruledOut": 0.98 })),
+    ] {
+        let settings = serde_json::from_value(json!({ key: value })).unwrap();
+        all.push(("setting-range", error(Some(&e), &m, settings)));
+    }
+    let request = Request { electrodes: Some(e.as_bytes()), maps: m.as_bytes(), ..Request::default() };
+    let lacking = Study::open(&request).unwrap().verdicts(0..1).unwrap_err();
+    all.push(("populations-lacking", (&lacking).into()));
     let mut bytes = m.clone().into_bytes();
     bytes[40] = 0xff;
     let utf8 = of_file("maps", FileWishes { encoding: Some(Encoding::Utf8), ..FileWishes::default() });
