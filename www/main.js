@@ -10,7 +10,7 @@ import { showAnswer } from "./views/answer.js";
 import { showColophon } from "./views/colophon.js";
 import { showDecompositions } from "./views/decompositions.js";
 import { showElectrodes } from "./views/electrodes.js";
-import { need } from "./views/element.js";
+import { furnish, need } from "./views/element.js";
 import { showExamples } from "./views/examples.js";
 import { showFailure } from "./views/failure.js";
 import { showHead } from "./views/head.js";
@@ -45,6 +45,7 @@ addEventListener("error", (event) => {
 });
 addEventListener("unhandledrejection", (event) => session.fail(event.reason));
 
+furnish(need("answer", HTMLElement), ANSWER_MARKUP);
 writeWords(document);
 for (const show of [
   showStatus,

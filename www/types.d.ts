@@ -573,6 +573,12 @@ declare const WASM_PACKED: string;
 /** Style sheets of the answer; put before the page's script by the build. */
 declare const ANSWER_STYLE: string;
 
+/** Text, or an element: its name, its attributes and what is in it. */
+type Markup = string | [string, Record<string, string>, ...Markup[]];
+
+/** What is in the answer, from answer.html; put before the page's script by the build. */
+declare const ANSWER_MARKUP: Markup[];
+
 /** A study as scripts see it; what stands after `close` is for the page's worker. */
 interface Study {
   readonly head: ReportHead;

@@ -26,6 +26,20 @@ export function make(tag, text, attributes = {}) {
   return element;
 }
 
+/** Puts elements of a template into their place. @param {HTMLElement} place @param {Markup[]} parts */
+export function furnish(place, parts) {
+  for (const part of parts) {
+    if (typeof part === "string") {
+      place.append(part);
+      continue;
+    }
+    const [tag, attributes, ...content] = part;
+    const element = make(tag, "", attributes);
+    furnish(element, content);
+    place.append(element);
+  }
+}
+
 /** Tells a screen reader; the same words twice running would not be heard. @param {string} text */
 export function speak(text) {
   const spoken = need("spoken", HTMLElement);

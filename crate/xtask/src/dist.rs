@@ -3,6 +3,7 @@
 use crate::bundle::Modules;
 use crate::engine::{loader_script, module, page_script, worker_script};
 use crate::examples::examples;
+use crate::markup::markup;
 use crate::notices::notices;
 use crate::packed::packed;
 use crate::page::{LIMIT, Parts, page};
@@ -27,6 +28,8 @@ pub struct Dist {
     pub worker: String,
     /// `inward.mjs`.
     pub module: String,
+    /// The answer's elements, which the page's script makes.
+    pub answer: String,
 }
 
 /// Builds and writes it all, and tells the sizes.
@@ -37,8 +40,10 @@ pub fn build(workspace: &Workspace) -> Result<Dist> {
     let carried = packed(&compiled.wasm)?;
     let loader = loader_script(&modules.join("load.js")?)?;
     let (style, answer_style) = styles(&www.join("style"))?;
-    let script =
-        page_script(&modules.join("main.js")?, &examples(&workspace.root.join("example_maps"))?, &answer_style)?;
+    let answer = read(&www.join("answer.html"))?;
+    let elements = markup(&answer)?;
+    let examples = examples(&workspace.root.join("example_maps"))?;
+    let script = page_script(&modules.join("main.js")?, &examples, &answer_style, &elements)?;
     let worker = worker_script(&modules.join("engine/worker.js")?, &compiled.glue)?;
     let parts = Parts {
         style: &style,
@@ -59,7 +64,7 @@ pub fn build(workspace: &Workspace) -> Result<Dist> {
     if page.len() > LIMIT {
         bail!("inward.html is larger than {LIMIT} bytes");
     }
-    Ok(Dist { compiled, carried, page, loader, script, worker, module })
+    Ok(Dist { compiled, carried, page, loader, script, worker, module, answer })
 }
 
 /// Style sheets from this name on are of the answer: they are packed with the script, which is there before it.

@@ -14,10 +14,12 @@ pub fn loader_script(joined: &Joined) -> anyhow::Result<String> {
     classic("", joined).context("the script that loads the page's")
 }
 
-/// The page's script, with the invented maps and the answer's style inside.
-pub fn page_script(joined: &Joined, examples: &str, style: &str) -> anyhow::Result<String> {
+/// The page's script, with the invented maps and the answer's style and elements inside.
+pub fn page_script(joined: &Joined, examples: &str, style: &str, answer: &str) -> anyhow::Result<String> {
     let style = serde_json::to_string(style)?;
-    classic(&format!("const EXAMPLES = {examples};\nconst ANSWER_STYLE = {style};\n"), joined).context("page script")
+    let data =
+        format!("const EXAMPLES = {examples};\nconst ANSWER_STYLE = {style};\nconst ANSWER_MARKUP = {answer};\n");
+    classic(&data, joined).context("page script")
 }
 
 /// The worker's script.

@@ -8,6 +8,7 @@ mod engine;
 mod examples;
 mod lexer;
 mod licences;
+mod markup;
 mod notices;
 mod packed;
 mod page;

@@ -48,6 +48,7 @@ pub fn check(dist: &Dist) -> Result<()> {
     ] {
         found.extend(in_script(script)?.into_iter().map(|what| format!("{name}, line {what}")));
     }
+    found.extend(in_markup(&dist.answer).into_iter().map(|what| format!("answer.html, line {what}")));
     found.extend(in_markup(&dist.page).into_iter().map(|what| format!("inward.html, line {what}")));
     if !found.is_empty() {
         bail!("not sealed:\n{}", found.join("\n"));
