@@ -215,10 +215,53 @@ async function table20306(worker, unit, tell) {
   tell(`two workers against one: ${(times[0] / times[1]).toFixed(2)} times as quick`);
 }
 
+const KINDS = ["noise", "one-dipole", "two-dipoles", "five-dipoles", "twenty-dipoles", "hundred-dipoles"];
+
+/** A share of the reference populations of 71 electrodes, in the slices that a page asks for. */
+function population(study, first, last) {
+  const start = performance.now();
+  for (const kind of KINDS) {
+    for (let done = first; done < last;) done += study.population(kind, done, 40, last).length / 2;
+  }
+  return seconds(start);
+}
+
+/** All of them in one worker and in two; then what a map of these waits for, with its region in words. */
+async function trust(worker, unit, tell) {
+  const times = [];
+  for (const count of [1, 2]) {
+    const workers = Array.from({ length: count }, worker);
+    const size = await workers[0].ask({ trust: "open" });
+    await Promise.all(workers.map((one) => one.ask({ trust: [0, 50] })));
+    const start = performance.now();
+    await Promise.all(workers.map((one, k) => one.ask({ trust: [(size * k) / count, (size * (k + 1)) / count] })));
+    times.push(seconds(start));
+    tell(
+      `71 electrodes, ${6 * size} population maps in ${count} ${count === 1 ? "worker" : "workers"}: ` +
+        `${times.at(-1).toFixed(2)} s (${(times.at(-1) / unit).toFixed(0)} calibrations)`,
+    );
+    if (count === 1) {
+      const region = await workers[0].ask({ trust: "region" });
+      tell(`region of a map, 200 refits: ${(1000 * region).toFixed(1)} ms (${(region / unit).toFixed(2)} calibrations)`);
+    }
+    for (const one of workers) one.end();
+  }
+  tell(`two workers against one: ${(times[0] / times[1]).toFixed(2)} times as quick`);
+}
+
 /** What a worker answers. */
 export function answerer(engine) {
   let work = null;
+  let study = null;
   return (question) => {
+    if (question.trust !== undefined) {
+      state = 71n;
+      study ??= engine.open(tables(71, 40).request);
+      if (question.trust === "open") return study.populationSize;
+      if (question.trust !== "region") return population(study, ...question.trust);
+      const all = () => Array.from({ length: study.count }, (_, index) => study.assess(index, ["region"]));
+      return shortest(all) / study.count;
+    }
     if (question === "fit") return work.fit();
     if (question === "reports") return work.reports();
     work = wholeTable(engine, ...question);
@@ -252,6 +295,7 @@ export async function bench(openEngine, tell, worker, native) {
     tell(work());
   }
   await table20306(worker, unit, tell);
+  await trust(worker, unit, tell);
 }
 
 /** No `await` and no `import.meta` outside of it: a browser takes this file as a classic script. */

@@ -4,6 +4,8 @@ use inward_core::electrode::{Grade, StandardSite, standard_sites};
 use inward_core::fit::Fitter;
 use inward_core::forward::LeadField;
 use inward_core::head::Shells;
+use inward_core::report::Assessment;
+use inward_core::simulate::Kind;
 use inward_core::{MapReport, Request, Settings, Study, Vec3};
 use std::hint::black_box;
 use std::time::{Duration, Instant};
@@ -34,6 +36,7 @@ fn main() {
     let time = shortest(|| set_up_and_fit(&directions, &maps));
     println!("256 maps at 256 electrodes with head set-up: {:.1} ms", time.as_secs_f64() * 1e3);
     picture(unit);
+    trust(unit);
 }
 
 fn told(time: Duration, count: usize, unit: Duration) -> String {
@@ -99,6 +102,46 @@ fn shortest(mut work: impl FnMut()) -> Duration {
         start.elapsed()
     };
     (0..5).map(|_| pass(&mut work)).min().unwrap_or_default()
+}
+
+/// The reference populations of 71 electrodes, and the region of a map.
+fn trust(unit: Duration) {
+    let directions = cap(71);
+    let maps = maps(&fitter(&directions), 40);
+    let labelled = |columns: &dyn Fn(usize) -> Vec<f64>| -> String {
+        let line = |i: usize| columns(i).iter().map(|value| format!("\t{value}")).collect::<String>();
+        (0..71).map(|i| format!("E{}{}\n", i + 1, line(i))).collect()
+    };
+    let electrodes = labelled(&|i| (directions[i] * 88.0).0.to_vec());
+    let table = labelled(&|i| maps.iter().map(|map| map[i]).collect());
+    let request = Request { electrodes: Some(electrodes.as_bytes()), maps: table.as_bytes(), ..Request::default() };
+    let Ok(study) = Study::open(&request) else { return };
+    let each = study.population_size();
+    let times = [1usize, 2].map(|threads| {
+        let start = Instant::now();
+        std::thread::scope(|scope| {
+            for part in 0..threads {
+                let study = &study;
+                let range = each * part / threads..each * (part + 1) / threads;
+                scope.spawn(move || Kind::ALL.map(|kind| black_box(study.population(kind, range.clone())).len()));
+            }
+        });
+        let time = start.elapsed();
+        let calibrations = time.as_secs_f64() / unit.as_secs_f64();
+        println!(
+            "71 electrodes, {} population maps, threads: {threads}: {:.2} s ({calibrations:.0} calibrations)",
+            6 * each,
+            time.as_secs_f64()
+        );
+        time.as_secs_f64()
+    });
+    println!("two threads against one: {:.2} times as quick", times[0] / times[1]);
+    drop(black_box(study.assess(0, &[Assessment::Region])));
+    let mut index = 0;
+    row(71, "region of a map, 200 refits", unit, 40, || {
+        index = (index + 1) % study.count();
+        drop(black_box(study.assess(index, &[Assessment::Region])));
+    });
 }
 
 /// One map from text to picture.

@@ -16,7 +16,7 @@ use crate::math::{Lanes, Single, Vec3, centre, dot, mean};
 use grid::{Explained, Grid};
 use objective::Objective;
 pub use profile::Profile;
-use refine::{DOUBLE, NEAR, Precision, Region, SINGLE, least, refine};
+use refine::{DOUBLE, Precision, Region, SINGLE, least, refine};
 pub use tangent::Tangent;
 
 /// A fitted dipole, in head coordinates.
@@ -142,13 +142,13 @@ impl Fitter {
         Some(Fit { evaluations, ..best })
     }
 
-    /// The minimum that a search from this position leads to, to a thousandth of the reach: where a simulated error moves a
-    /// fit to. `None` for a map that is the same everywhere.
+    /// The minimum that a search from this position leads to, with the precision of searches for starts: where a simulated
+    /// error moves a fit to, which is a thousand times as far as that precision. `None` for a map that is the same everywhere.
     pub fn follow(&self, map: &[f64], start: Vec3) -> Option<Fit> {
         let (map, size) = normalise(map)?;
         let region = Region { reach: self.field.reach(), step: self.grid.step() };
-        let mut surface = Objective::new(self.field.field(), &map);
-        let fit = refine(&mut surface, start, region, NEAR, &[])?;
+        let mut surface = Objective::new(&self.rough, &map);
+        let fit = refine(&mut surface, start, region, SINGLE, &[])?;
         Some(Fit { moment: fit.moment * (size / self.field.scale()), evaluations: surface.evaluations(), ..fit })
     }
 

@@ -22,9 +22,6 @@ pub(super) struct Precision {
 /// Of what is answered.
 pub(super) const DOUBLE: Precision = Precision { rounding: 1e-13, step: 1e-10, slack: 1e-9 };
 
-/// Of simulations, which scatter a thousand times farther.
-pub(super) const NEAR: Precision = Precision { rounding: 1e-13, step: 1e-4, slack: 1e-9 };
-
 /// Of searches for starts.
 pub(super) const SINGLE: Precision = Precision { rounding: 3e-7, step: 1e-3, slack: 1e-4 };
 
