@@ -171,6 +171,12 @@ interface Populations {
   state: "waiting" | "drawing" | "done" | "stopped";
 }
 
+/** Draws as they are handed to a worker: those of one name are the same. */
+interface GivenPopulations {
+  name: string;
+  kinds: Record<PopulationKind, Float64Array>;
+}
+
 interface FileSettings {
   role?: string | null;
   part?: string | null;
@@ -726,6 +732,10 @@ type WorkerTask =
   | { kind: "matches"; keys: number[]; own: Float64Array; others: Float64Array; names: string[] }
   | { kind: "report"; key: number }
   | { kind: "comparison"; keys: number[]; members: Omit<ComparedStudy, "study">[]; settings: ComparisonSettings }
+  | { kind: "population-key"; key: number }
+  | { kind: "population"; key: number; population: PopulationKind; first: number; last: number }
+  | { kind: "trust"; key: number; index: number; populations: GivenPopulations | null }
+  | { kind: "verdicts"; key: number; populations: GivenPopulations }
   | { kind: "close"; key: number };
 
 /** `named`: requests of the studies that the task needs and the worker does not hold. */

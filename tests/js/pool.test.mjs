@@ -208,3 +208,106 @@ test("cancelling ends the work, and the next goes on", async () => {
   await fit(0);
   complete();
 });
+
+const KINDS = ["noise", "one-dipole", "two-dipoles", "five-dipoles", "twenty-dipoles", "hundred-dipoles"];
+
+/** Draw k of a kind is the number k beside the kind's; `spoil` may end a piece otherwise, and fits take turns of a millisecond. */
+function drawers(size, helpers, spoil = () => undefined) {
+  const asked = [];
+  const start = () => {
+    const listeners = {};
+    const worker = {
+      ended: false,
+      addEventListener: (name, listener) => (listeners[name] = listener),
+      terminate: () => (worker.ended = true),
+      say: (data) => !worker.ended && listeners.message({ data }),
+      async postMessage({ id, kind, key, population, first, last }) {
+        if (kind === "fit") {
+          for (let at = first; at < last; at += 16) {
+            asked.push("fit");
+            await new Promise((resume) => setTimeout(resume, 1));
+            worker.say({ id, progress: { first: at, maps: Array(Math.min(16, last - at)).fill(0) } });
+          }
+          return worker.say({ id, value: null });
+        }
+        if (kind !== "population") return;
+        asked.push({ key, population, first, last });
+        await new Promise((resume) => setTimeout(resume, (last - first) / 10));
+        const told = spoil({ worker, population, first });
+        if (told === "death") return listeners.error({ preventDefault() {}, message: "gone" });
+        if (told !== undefined) return worker.say({ id, fault: { code: told } });
+        const numbers = Float64Array.from({ length: 2 * (last - first) }, (_, at) => (at % 2 ? KINDS.indexOf(population) : first + at / 2));
+        worker.say({ id, value: numbers });
+      },
+    };
+    return worker;
+  };
+  const pool = makePool({}, start, helpers);
+  const got = Object.fromEntries(KINDS.map((kind) => [kind, new Map()]));
+  const from = (count = 0) => Object.fromEntries(KINDS.map((kind) => [kind, count]));
+  const key = pool.name({ files: [{ name: "a", content: "a" }] });
+  const wanted = { key, size, drawn: (kind, first, numbers) => numbers.forEach((number, at) => got[kind].set(2 * first + at, number)) };
+  const complete = (first = 0) => {
+    for (const [at, kind] of KINDS.entries()) {
+      const numbers = [...got[kind]].sort(([a], [b]) => a - b);
+      assert.deepEqual(numbers.map(([place]) => place), Array.from({ length: 2 * (size - first) }, (_, k) => 2 * first + k));
+      for (const [place, number] of numbers) assert.equal(number, place % 2 ? at : place / 2);
+    }
+  };
+  return { pool, asked, got, wanted, from, complete };
+}
+
+test("populations are drawn in pieces, by one worker or several, each draw once, and go on where they were", async () => {
+  for (const helpers of [1, 3]) {
+    const { pool, asked, wanted, from, complete } = drawers(1000, helpers);
+    await pool.draw(wanted, from());
+    complete();
+    const draws = asked.reduce((sum, { first, last }) => sum + last - first, 0);
+    assert.equal(draws, 6000, "no draw is asked for twice");
+  }
+  const { pool, wanted, from, complete } = drawers(1000, 1);
+  await pool.draw(wanted, from(300));
+  complete(300);
+});
+
+test("a lost worker's draws are drawn by another, and a fault of the draws themselves is told", async () => {
+  let deaths = 0;
+  const dying = drawers(1000, 2, ({ first }) => (first > 0 && deaths < 2 ? (deaths++, "death") : undefined));
+  await dying.pool.draw(dying.wanted, dying.from());
+  assert.equal(deaths, 2);
+  dying.complete();
+  let tries = 0;
+  const trapped = drawers(1000, 2, ({ population, first }) => (population === "two-dipoles" && first === 0 ? (tries++, "engine-trap") : undefined));
+  await assert.rejects(trapped.pool.draw(trapped.wanted, trapped.from()), { code: "engine-trap" });
+  assert.equal(tries, 3);
+  const faulty = drawers(1000, 2, () => "settings-misunderstood");
+  await assert.rejects(faulty.pool.draw(faulty.wanted, faulty.from()), { code: "settings-misunderstood" });
+});
+
+test("stopped draws tell nothing any more, another study's take their place, and fits come first", async () => {
+  const { pool, asked, got, wanted, from, complete } = drawers(3000, 2);
+  const stopped = pool.draw(wanted, from());
+  await new Promise((resume) => setTimeout(resume, 60));
+  pool.stopDrawing();
+  await assert.rejects(stopped, { code: "given-up" });
+  const before = got.noise.size;
+  await new Promise((resume) => setTimeout(resume, 150));
+  assert.ok(before > 0 && got.noise.size === before, "a late piece is dropped");
+  for (const kind of KINDS) got[kind].clear();
+  asked.length = 0;
+  const fitted = pool.fit({ key: wanted.key, count: 2000, rank: () => 0, opened() {}, fitted() {} }, [{ first: 0, last: 2000 }]);
+  const other = pool.name({ files: [{ name: "b", content: "b" }] });
+  const first = pool.draw({ ...wanted, drawn: () => assert.fail("the former study's draws are of no use") }, from());
+  const second = pool.draw({ ...wanted, key: other }, from());
+  await assert.rejects(first, { code: "given-up" });
+  await fitted;
+  const begun = asked.findIndex((one) => one !== "fit");
+  assert.ok(asked.slice(0, begun).length * 16 > 1000 && begun > 0, `${begun} turns of fits before the first draws`);
+  await second;
+  complete();
+  assert.ok(asked.every((one) => one === "fit" || one.key === other));
+  // Forgetting a study ends its draws.
+  const third = pool.draw(wanted, from());
+  pool.forget(wanted.key);
+  await assert.rejects(third, { code: "given-up" });
+});

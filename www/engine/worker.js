@@ -6,6 +6,7 @@
 
 import { makeEngine } from "./engine.js";
 import { faultOf, lacksMemory } from "./fault.js";
+import { POPULATION_KINDS } from "./kinds.js";
 import { compileWasm } from "./wasm.js";
 import { harmless } from "../text/figures.js";
 import { comparisonParts, reportHead, reportMap, reportTail } from "../export/json.js";
@@ -137,6 +138,16 @@ async function warmUpOn(request) {
   }
 }
 
+/** Which draws a study was handed last. @type {WeakMap<Study, string>} */
+const handed = new WeakMap();
+
+/** @param {Study} study @param {GivenPopulations | null} given */
+function handOver(study, given) {
+  if (given === null || handed.get(study) === given.name) return;
+  for (const kind of POPULATION_KINDS) study.keepPopulation(kind, given.kinds[kind]);
+  handed.set(study, given.name);
+}
+
 /** @param {Study} study @returns {OpenedStudy} */
 function openedStudy(study) {
   const preamble = study.preamble();
@@ -222,6 +233,38 @@ async function answerTask(message) {
       }
       const report = workerEngine.compareStudies(list, settings);
       return self.postMessage({ id, value: new Blob(comparisonParts(report), { type: "application/json" }) });
+    }
+    case "population-key": {
+      const study = studyOf(message.key);
+      return self.postMessage({ id, value: { key: study.populationKey(), size: study.populationSize } });
+    }
+    case "population": {
+      const { key, population, first, last } = message;
+      const study = studyOf(key);
+      const numbers = new Float64Array(2 * (last - first));
+      await inSlices(key, study, { first, last }, (done, milliseconds) => {
+        const some = study.population(population, done, milliseconds / 2, last);
+        numbers.set(some, 2 * (done - first));
+        return some.length / 2;
+      });
+      return self.postMessage({ id, value: numbers }, { transfer: [numbers.buffer] });
+    }
+    case "trust": {
+      const study = studyOf(message.key);
+      handOver(study, message.populations);
+      return self.postMessage({ id, value: study.trust(message.index) });
+    }
+    case "verdicts": {
+      const study = studyOf(message.key);
+      handOver(study, message.populations);
+      /** @type {(VerdictWord | null)[]} */
+      const words = [];
+      await inSlices(message.key, study, { first: 0, last: study.count }, (done, milliseconds) => {
+        const some = study.verdicts(done, study.count, milliseconds);
+        words.push(...some);
+        return some.length;
+      });
+      return self.postMessage({ id, value: words });
     }
     case "close":
       closeStudy(message.key);

@@ -401,6 +401,9 @@ export function makeFitting(store, pool, fail) {
       }
     },
 
+    /** Whether nothing is being fitted. */
+    isAtRest: () => [...runs.values()].every(({ over }) => over),
+
     /** Until nothing is fitted any more. */
     async rest() {
       while ([...runs.values()].some(({ over }) => !over)) await new Promise((wake) => setTimeout(wake, SHOWING_MS));

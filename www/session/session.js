@@ -5,6 +5,7 @@
 
 import { makeFitting } from "./fitting.js";
 import { makeInquiries } from "./inquiries.js";
+import { makePopulations } from "./populations.js";
 import { makeSideBySide } from "./side_by_side.js";
 import { makeStore } from "./store.js";
 import { faultOf } from "../engine/fault.js";
@@ -320,9 +321,12 @@ export function makeSession() {
   const inquiries = makeInquiries(store, () => client, fail, fitting);
   const sideBySide = makeSideBySide(store, () => client, { fitting, step, askChanged, choose: inquiries.choose });
 
+  const populations = makePopulations(store, () => client, fail, fitting);
+
   return {
     ...inquiries,
     ...sideBySide,
+    ...populations,
     read: store.read,
     watch: store.watch,
     fail,

@@ -87,6 +87,18 @@ export function makePool(module, startWorker, helpers = helperCount()) {
       return schedule.fit({ ...wanted, bytes: request === undefined ? 0 : bytesOf(request) }, ranges);
     },
 
+    /**
+     * Draws what is missing of reference populations, behind all fits; see `drawing.js`. A second call takes the place of the first.
+     * @param {Omit<Parameters<typeof schedule.draw>[0], "bytes">} wanted
+     * @param {Record<PopulationKind, number>} from how many there are of each kind
+     */
+    draw(wanted, from) {
+      const request = book.requests.get(wanted.key);
+      return schedule.draw({ ...wanted, bytes: request === undefined ? 0 : bytesOf(request) }, from);
+    },
+
+    stopDrawing: () => schedule.stopDrawing(),
+
     cancel: () => schedule.cancel(),
 
     /** Fits no more of a table, which stays open. @param {number} key */

@@ -10,6 +10,8 @@
  */
 
 import { LARGE_BYTES } from "./client.js";
+import { makeDrawing } from "./drawing.js";
+import { LOST, MOST_TRIES, SILENCE_MS } from "./faults.js";
 
 /** @import { WorkerClient } from "./client.js" */
 
@@ -23,19 +25,12 @@ const PIECES = { least: 64, most: 2048 };
 /** Files that the worker which is asked by hand opens for other decompositions: it must not be long at it. */
 const BRIEF_BYTES = 2 ** 20;
 
-/** So often maps are fitted again that were lost with a worker. */
-const MOST_TRIES = 3;
-
-/** After this long without a word a worker that is fitting is taken for lost. */
-const SILENCE_MS = 20_000;
-
-/** Faults of a worker, not of what it was given. */
-const LOST = ["engine-trap", "worker-lost", "worker-unavailable"];
-
 /** @param {Member[]} members */
 export function makeSchedule(members) {
   /** @type {Set<Job>} */
   const jobs = new Set();
+  /** What workers do that have no map to fit. */
+  const drawing = makeDrawing(members);
 
   /** @param {Job} job @param {Fault | null} fault */
   function end(job, fault) {
@@ -79,7 +74,17 @@ export function makeSchedule(members) {
       const job = order.find((one) => one.pieces.length > 0 && suits(one, member) && (one.count !== null || one.running.size === 0));
       const piece = job === undefined ? null : nextPiece(job);
       if (job !== undefined && piece !== null) give(member, job, piece);
+      else drawn(member, drawing.begin(member));
     }
+  }
+
+  /** @param {Member} member @param {Promise<void> | null} piece */
+  async function drawn(member, piece) {
+    if (piece === null) return;
+    member.busy = true;
+    await piece;
+    member.busy = false;
+    dispatch();
   }
 
   /** @param {Member} member @param {Job} job @param {Piece} piece */
@@ -157,11 +162,21 @@ export function makeSchedule(members) {
 
     dispatch,
 
+    /** @type {typeof drawing.start} draws behind all fits; a second call takes the place of the first */
+    draw(wanted, from) {
+      const all = drawing.start(wanted, from);
+      dispatch();
+      return all;
+    },
+
+    stopDrawing: () => drawing.stop(),
+
     /** Whether maps of a table are being fitted. @param {number} key */
     has: (key) => [...jobs].some((job) => job.key === key),
 
     /** Drops what is still to be fitted of a table. @param {number} key */
     drop(key) {
+      drawing.stop(key);
       for (const job of jobs) {
         if (job.key !== key) continue;
         jobs.delete(job);
