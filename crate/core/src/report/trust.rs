@@ -212,6 +212,8 @@ pub struct HintReport {
     pub code: Hint,
     /// In words.
     pub text: &'static str,
+    /// What it rests on.
+    pub basis: &'static str,
 }
 
 impl VerdictReport {
@@ -226,7 +228,10 @@ impl VerdictReport {
                 false => verdict_text(word).into(),
             },
             reasons: reasons.iter().map(reason).collect(),
-            hints: hints.iter().map(|&code| HintReport { code, text: hint_text(code) }).collect(),
+            hints: hints
+                .iter()
+                .map(|&code| HintReport { code, text: hint_text(code), basis: "common practice, no source" })
+                .collect(),
         }
     }
 }

@@ -12,11 +12,14 @@ pub struct Ellipsoid {
 }
 
 impl Ellipsoid {
-    /// About a centre, of the shape that the points have, holding this share of them; `None` for points in a plane.
+    /// About a centre, of the shape that the points have, holding this share of them; `None` for no points. Points in a plane,
+    /// and points that are all at the centre, have a little thickness.
     pub fn holding(points: &[Vec3], centre: Vec3, share: f64) -> Option<Self> {
         let moment = |i: usize, j: usize| points.iter().map(|p| (*p - centre)[i] * (*p - centre)[j]).sum::<f64>();
         let count = points.len() as f64;
-        let covariance = Symmetric3::from_fn(|i, j| moment(i, j) / count);
+        let flat = Symmetric3::from_fn(|i, j| moment(i, j) / count);
+        let thickness = 1e-9 * (flat.at(0, 0) + flat.at(1, 1) + flat.at(2, 2)) + 1e-14;
+        let covariance = Symmetric3::from_fn(|i, j| flat.at(i, j) + if i == j { thickness } else { 0.0 });
         let factor = covariance.factor()?;
         let mut squares: Vec<f64> = points.iter().map(|&p| (p - centre).dot(factor.solve(p - centre))).collect();
         let last = squares.len().checked_sub(1)?;
