@@ -25,7 +25,10 @@ import { showShares } from "./views/shares.js";
 import { showSign } from "./views/sign.js";
 import { showStatus } from "./views/status.js";
 import { showTable } from "./views/table.js";
+import { showPopulations } from "./views/populations.js";
 import { showTerms } from "./views/terms.js";
+import { showTrust } from "./views/trust.js";
+import { showTrustSettings } from "./views/trust_settings.js";
 import { showUnderstood } from "./views/understood.js";
 import { showUndo } from "./views/undo.js";
 
@@ -58,7 +61,10 @@ for (const show of [
   showTable,
   showMaps,
   showSign,
+  showTrust,
   showHeadViews,
+  showPopulations,
+  showTrustSettings,
   showNumbers,
   showElectrodes,
   showHead,

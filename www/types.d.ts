@@ -136,7 +136,7 @@ interface Trust {
     causes: { cause: string; label: string; size: string; sd: string }[];
     /** Refitted positions, in the axes and the unit of a figure. */
     cloud: number[][];
-    ellipsoid: Ellipsoid;
+    ellipsoid: Ellipsoid | null;
     noise_only: Ellipsoid | null;
     /** The residual's, in words. */
     structure: string;

@@ -259,6 +259,9 @@ fn views_paint_the_dipole_where_it_is(browser: Browser) {
             page.click(&button(name));
         }
         page.wait_for_answer();
+        // Without the region around it, whenever that comes.
+        page.value("for (const box of document.querySelectorAll('#region-legend input')) box.checked = false");
+        page.until("the region", |page| page.visible("#region-legend"));
         page.settle();
         let report = page.report();
         let dipole = vector(&report["maps"][0]["dipole"]["canonical_mm"]);

@@ -119,7 +119,9 @@ fn paper_holds_the_answer(browser: Browser) {
     let page = answered(browser);
     page.take_down_words();
     page.surround(Surroundings { print: true, dark: true, ..PLAIN });
-    for shown in ["#sentence", "#map-measured", "#view-above", "#view-behind", "#view-left", "#numbers", "#caution"] {
+    for shown in
+        ["#sentence", "#map-measured", "#view-above", "#view-behind", "#view-left", "#trust", "#numbers", "#caution"]
+    {
         assert!(page.visible(shown), "{shown} is printed");
     }
     let controls = page.value(
@@ -147,7 +149,7 @@ fn paper_holds_the_answer(browser: Browser) {
             paper.points.0.abs_diff(points.0) <= 1 && paper.points.1.abs_diff(points.1) <= 1,
             "{paper:?} for {points:?}"
         );
-        assert!((1..=5).contains(&paper.pages), "{paper:?}");
+        assert!((1..=7).contains(&paper.pages), "{paper:?}");
         for (id, words) in [
             ("map-measured", &["L", "R", "front", "seen from above"][..]),
             ("view-above", &["L", "R", "seen from above"]),

@@ -41,6 +41,8 @@ const LOG_TICKS = [0.001, 0.002, 0.005, 0.01, 0.02, 0.05, 0.1, 0.2, 0.5, 1];
  * @property {number} threshold
  * @property {number | null} pointed a residual variance that is pointed at
  * @property {{ x: string, y: string }} words
+ * @property {ShareLine[]} [behind] reference populations: thin beside others, in colours where they are alone; named where they run
+ * @property {string} [told] what is written at the threshold in place of it
  */
 
 /** @typedef {{ left: number, right: number, top: number, bottom: number, x: (rv: number) => number, y: (share: number) => number, rv: (x: number) => number, least: number }} SharePlot */
@@ -67,25 +69,25 @@ export function shareAt({ rv, share, steps }, x, values = share) {
 /** How high a figure of this width is. @param {number} width @param {number} count of lines */
 export function sharesHeight(width, count) {
   const plot = Math.max(230, Math.min(330, 0.62 * width));
-  if (width >= WIDE) return Math.max(plot, count * NAME_LINE) + AROUND_PLOT.top + AROUND_PLOT.bottom;
+  if (width >= WIDE || count === 0) return Math.max(plot, count * NAME_LINE) + AROUND_PLOT.top + AROUND_PLOT.bottom;
   return plot + AROUND_PLOT.top + AROUND_PLOT.bottom + count * NAME_LINE + 4;
 }
 
 /**
  * @param {number} width
  * @param {number} height
- * @param {Pick<SharesContent, "lines" | "logarithmic" | "most">} content
+ * @param {Pick<SharesContent, "lines" | "logarithmic" | "most" | "behind">} content
  * @param {Surroundings} around
  * @returns {SharePlot}
  */
-export function layOutShares(width, height, { lines, logarithmic, most }, around) {
-  const wide = width >= WIDE;
+export function layOutShares(width, height, { lines, logarithmic, most, behind = [] }, around) {
+  const wide = width >= WIDE && lines.length > 0;
   const longest = Math.max(...lines.map(({ name }) => textWidth(name, letterFont(around))));
   const names = Math.min(NAMES_SHARE * width, longest + 16 + SWATCH + 6 + 60);
   const right = width - (wide ? names : AROUND_PLOT.right);
-  const bottom = height - AROUND_PLOT.bottom - (wide ? 0 : lines.length * NAME_LINE + 4);
+  const bottom = height - AROUND_PLOT.bottom - (wide || lines.length === 0 ? 0 : lines.length * NAME_LINE + 4);
   const { left, top } = AROUND_PLOT;
-  const smallest = Math.min(...lines.map(({ rv, share }) => rv[Math.max(0, share.findIndex((one) => one > 0))] ?? 1));
+  const smallest = Math.min(...[...lines, ...behind].map(({ rv, share }) => rv[Math.max(0, share.findIndex((one) => one > 0))] ?? 1));
   const least = logarithmic ? (LEAST_LOG.find((one) => one <= smallest) ?? LEAST_LOG[LEAST_LOG.length - 1]) : 0;
   const span = Math.log(most / least);
   /** @param {number} rv */
@@ -113,7 +115,7 @@ export function layOutShares(width, height, { lines, logarithmic, most }, around
  * @param {Surroundings} around
  */
 export function paintShares(pen, width, height, content, around) {
-  const { lines, logarithmic, most, threshold, pointed, words } = content;
+  const { lines, logarithmic, most, threshold, pointed, words, behind = [], told } = content;
   const plot = layOutShares(width, height, content, around);
   const linear = most > 0.5 ? 0.2 : most > 0.3 ? 0.1 : 0.05;
   const ticks = logarithmic
@@ -122,6 +124,13 @@ export function paintShares(pen, width, height, content, around) {
   pen.font = letterFont(around);
   paintAxes(pen, plot, { across: ticks.map((tick) => [plot.x(tick), enteredText(100 * tick)]), words }, around);
 
+  const alone = lines.length === 0;
+  for (const line of behind) {
+    pen.beginPath();
+    traceLine(pen, plot, line, line.share, most);
+    if (alone) strokeSeries(pen, line.at, 2, around);
+    else strokeLine(pen, around.ink, line.at, 1, 0.6);
+  }
   lines.forEach((line) => paintBand(pen, plot, line, most, around));
   // The first decomposition lies on top.
   for (const line of [...lines].reverse()) {
@@ -143,15 +152,38 @@ export function paintShares(pen, width, height, content, around) {
     pen.lineTo(x, plot.bottom);
     pen.stroke();
     pen.globalAlpha = 1;
-    for (const line of [...lines].reverse()) dot(pen, x, plot.y(shareAt(line, rv)), line.at, around);
+    for (const line of [...(alone ? behind : lines)].reverse()) dot(pen, x, plot.y(shareAt(line, rv)), line.at, around);
   }
+  paintInside(pen, width, plot, content, around);
   if (threshold <= most) {
     pen.textAlign = "center";
     pen.font = `600 ${letterFont(around)}`;
-    writeHaloed(pen, levelText(threshold), plot.x(threshold), plot.top - 12, width, around);
+    writeHaloed(pen, told ?? levelText(threshold), plot.x(threshold), plot.top - 12, width, around);
     pen.font = letterFont(around);
   }
-  paintNames(pen, width, plot, content, around);
+  if (!alone) paintNames(pen, width, plot, content, around);
+}
+
+/**
+ * Names of the lines behind, each at a height of its own: those on the left high, those on the right low.
+ * @param {CanvasRenderingContext2D} pen
+ * @param {number} width
+ * @param {SharePlot} plot
+ * @param {SharesContent} content
+ * @param {Surroundings} around
+ */
+function paintInside(pen, width, plot, { behind = [], lines, most }, around) {
+  /** @param {ShareLine} line @param {number} level */
+  const reach = ({ rv, share }, level) => rv[share.findIndex((one) => one >= level)] ?? most;
+  const sorted = [...behind].sort((a, b) => reach(a, 0.5) - reach(b, 0.5));
+  pen.textAlign = "center";
+  sorted.forEach((line, k) => {
+    const level = 0.92 - (0.84 * (k + 0.5)) / sorted.length;
+    const x = plot.x(Math.min(most, reach(line, level)));
+    const half = pen.measureText(line.name).width / 2 + 7;
+    if (lines.length === 0) dot(pen, x, plot.y(level), line.at, around);
+    writeHaloed(pen, line.name, x + (x + 2 * half < plot.right ? half : -half), plot.y(level), width, around);
+  });
 }
 
 /**
@@ -161,7 +193,7 @@ export function paintShares(pen, width, height, content, around) {
  * @param {{ across: [number, string][], up?: [number, string][], words: { x: string, y: string } }} marks
  * @param {Surroundings} around
  */
-function paintAxes(pen, plot, { across, up, words }, around) {
+export function paintAxes(pen, plot, { across, up, words }, around) {
   const { left, right, top, bottom } = plot;
   const rising = up ?? [0, 20, 40, 60, 80, 100].map((one) => [bottom - ((bottom - top) * one) / 100, String(one)]);
   pen.strokeStyle = around.ink;
@@ -240,11 +272,18 @@ function paintBand(pen, plot, line, most, around) {
 
 /** @param {CanvasRenderingContext2D} pen @param {number} at @param {number} width @param {Surroundings} around */
 function strokeSeries(pen, at, width, around) {
-  pen.strokeStyle = seriesColour(at, around.theme);
+  strokeLine(pen, seriesColour(at, around.theme), at, width, 1);
+}
+
+/** @param {CanvasRenderingContext2D} pen @param {string} colour @param {number} at gives the dash @param {number} width @param {number} alpha */
+function strokeLine(pen, colour, at, width, alpha) {
+  pen.strokeStyle = colour;
   pen.lineWidth = width;
+  pen.globalAlpha = alpha;
   pen.setLineDash(seriesDash(at));
   pen.stroke();
   pen.setLineDash([]);
+  pen.globalAlpha = 1;
 }
 
 /** @param {CanvasRenderingContext2D} pen @param {number} x @param {number} y @param {number} at @param {Surroundings} around */

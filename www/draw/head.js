@@ -4,9 +4,11 @@
  */
 
 import { openCanvas, shrinkOf } from "./canvas.js";
+import { paintRegion } from "./region.js";
 import { letterFont, markDipole, markElectrode, markPointed, shortLabel, writeHaloed } from "./marks.js";
 
 /** @import { Surroundings } from "./canvas.js" */
+/** @import { RegionMarks } from "./region.js" */
 
 /** CSS pixels around the head for the letters. */
 const HEAD_MARGIN = 34;
@@ -40,6 +42,7 @@ const CIRCLE_STEPS = 96;
  * @property {{ side: Side, text: string }[]} letters
  * @property {string} seen written below
  * @property {number[]} [named] electrodes of the near side with their labels
+ * @property {RegionMarks | null} [region] where the dipole may lie as well
  */
 
 /** @type {Record<Side, number[]>} */
@@ -138,6 +141,7 @@ export function paintHead(canvas, content, around) {
 
   paintShells(pen, middle, centre, radius, figure, around);
   paintSide(false);
+  if (content.region) paintRegion(pen, place, content.region, around);
   paintMoment(pen, place, radius, figure, around);
   paintSide(true);
   for (const at of content.named ?? []) {

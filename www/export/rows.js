@@ -3,7 +3,7 @@
  * as they are. Text follows RFC 4180; a name that a spreadsheet might take for a formula has an apostrophe before it.
  */
 
-/** @typedef {{ number: number, map: Answer["maps"][number] }} NumberedMap */
+/** @typedef {{ number: number, map: Answer["maps"][number], verdict: VerdictWord | null }} NumberedMap */
 /** @typedef {{ code: string, of: (row: MapRow) => string | number | boolean | null }} RowField */
 
 /** @param {MapUnit} unit @returns {RowField[]} */
@@ -54,11 +54,11 @@ function quoted(text, delimiter) {
  */
 export function rowsText(maps, unit, delimiter) {
   const fields = rowFields(unit);
-  const heading = ["number", "name", ...fields.map(({ code }) => code), "not_fitted"];
-  const rows = maps.map(({ number, map }) => {
+  const heading = ["number", "name", ...fields.map(({ code }) => code), "verdict", "not_fitted"];
+  const rows = maps.map(({ number, map, verdict }) => {
     const failed = "error" in map;
     const values = fields.map(({ of }) => (failed ? "" : String(of(map) ?? "")));
-    return [String(number), guarded(map.name), ...values, failed ? guarded(map.error.message) : ""];
+    return [String(number), guarded(map.name), ...values, verdict ?? "", failed ? guarded(map.error.message) : ""];
   });
   return [heading, ...rows].map((cells) => `${cells.map((cell) => quoted(cell, delimiter)).join(delimiter)}\r\n`).join("");
 }
@@ -66,10 +66,11 @@ export function rowsText(maps, unit, delimiter) {
 /** @param {NumberedMap[]} maps @param {MapUnit} unit @param {Program | null} program */
 export function rowsJson(maps, unit, program) {
   const fields = rowFields(unit);
-  const rows = maps.map(({ number, map }) => ({
+  const rows = maps.map(({ number, map, verdict }) => ({
     number,
     name: map.name,
     ...Object.fromEntries(fields.map(({ code, of }) => [code, "error" in map ? null : of(map)])),
+    verdict,
     not_fitted: "error" in map ? map.error.message : null,
   }));
   const lines = rows.map((row) => `    ${JSON.stringify(row)}`).join(",\n");

@@ -53,3 +53,8 @@ export function timeText(time, unit) {
 export function enteredText(value) {
   return String(Number(value.toPrecision(6)));
 }
+
+/** @param {number} seconds */
+export function leftText(seconds) {
+  return seconds < 90 ? `${Math.max(1, Math.round(seconds))} s` : `${Math.round(seconds / 60)} min`;
+}

@@ -134,6 +134,11 @@ export const TERMS = [
     line: "A line of equal value: solid where positive, dashed where negative.",
   },
   {
+    code: "reference-population",
+    words: ["reference population", "reference populations", "reference maps"],
+    line: "Simulated maps of noise, one, two, five, twenty or a hundred dipoles, for the same electrodes and head.",
+  },
+  {
     code: "left-over",
     words: ["left-over map", "left over"],
     line: "What the dipole does not reproduce: measured less one dipole, electrode by electrode.",

@@ -1,9 +1,11 @@
 /** Every sentence of the page, by code. */
 
-import { enteredText, NO_BREAK, percentText, shortName, timeText, typeset } from "./figures.js";
+import { enteredText, leftText, NO_BREAK, percentText, shortName, timeText, typeset } from "./figures.js";
+import { beginning, TRUST_WORDS } from "./trust.js";
 
 /** @type {Record<string, string>} */
 const WORDS = {
+  ...TRUST_WORDS,
   title: "Inward",
   tagline: "One equivalent dipole for one EEG scalp map",
   private: "Nothing leaves this machine",
@@ -92,7 +94,7 @@ const WORDS = {
   "ledger.none": "nothing",
   "ledger.most": "RV at most",
   "ledger.slider": "Most residual variance of the maps listed",
-  "ledger.nothing": "No map has so little residual variance.",
+  "ledger.nothing": "No map is left by these limits.",
   "ledger.how": "In the list: arrow keys, or type a number or the beginning of a name; Enter goes to the answer.",
   "band.0": "At most 5 %",
   "band.1": "Over 5 to 10 %",
@@ -343,11 +345,6 @@ export function word(code) {
   return text;
 }
 
-/** @param {number} seconds */
-function leftText(seconds) {
-  return seconds < 90 ? `${Math.max(1, Math.round(seconds))} s` : `${Math.round(seconds / 60)} min`;
-}
-
 /** @param {Progress} progress */
 export function progressText({ done, total, left, about }) {
   const text = `${done.toLocaleString("en-GB")} of ${about ? "about " : ""}${total.toLocaleString("en-GB")} maps fitted`;
@@ -361,7 +358,7 @@ function countText(count, noun) {
 
 /** Heading of a group of maps: a band of residual variance, a region, or those not fitted. @param {string} code @param {number} count */
 export function groupText(code, count) {
-  const title = WORDS[code] ?? `${code[0].toUpperCase()}${code.slice(1).replace("-", ", ")}`;
+  const title = beginning(WORDS[code] ?? code.replace("-", ", "));
   return typeset(`${title} · ${countText(count, "map")}`);
 }
 

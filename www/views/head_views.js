@@ -2,9 +2,11 @@
 
 import { surroundingsOf } from "../draw/canvas.js";
 import { electrodeOnHead, paintHead } from "../draw/head.js";
+import { typeset } from "../text/figures.js";
 import { standpointText, word } from "../text/words.js";
 import { need } from "./element.js";
 import { keepPainted } from "./surface.js";
+import { regionMarks } from "./trust.js";
 
 /** @import { Session } from "../session/session.js" */
 /** @import { HeadContent, Side, Standpoint } from "../draw/head.js" */
@@ -80,6 +82,7 @@ export function showHeadViews(session) {
       from: from(),
       letters: sides.map((side) => ({ side, text: word(`map.${side}`) })),
       seen: seen(),
+      region: regionMarks(answer.trust),
     };
   }
 
@@ -161,4 +164,12 @@ export function showHeadViews(session) {
     },
   );
   session.watch((state) => state.pointed, paint);
+  session.watch(
+    ({ answer }) => answer?.trust,
+    (trust) => {
+      need("region-alt", HTMLElement).textContent = typeset(trust?.region.alt ?? "");
+      paint();
+    },
+  );
+  need("region-legend", HTMLElement).addEventListener("change", paint);
 }

@@ -1,4 +1,4 @@
-/** Which maps are listed, and in which order: filtered by residual variance, grouped, sorted. Without elements. */
+/** Which maps are listed, and in which order: filtered by residual variance and verdict, grouped, sorted. Without elements. */
 
 /** Upper ends of the bands of residual variance; the last one has none. */
 export const BANDS = [0.05, 0.1, 0.15, Infinity];
@@ -7,9 +7,13 @@ const REGIONS = ["front", "middle", "back"].flatMap((third) =>
   ["left", "midline", "right"].map((side) => `${third}-${side}`),
 );
 
-/** @typedef {"number" | "rv" | "depth" | "strength" | "region"} LedgerOrder */
-/** @typedef {"band" | "region" | "none"} LedgerGrouping */
-/** @typedef {{ order: LedgerOrder, grouping: LedgerGrouping, most: number }} LedgerView */
+/** Verdicts, the most trusted first. @type {VerdictWord[]} */
+export const VERDICTS = ["dipolar", "undecided", "not-dipolar", "edge", "below-the-brain", "lone-electrode"];
+
+/** @typedef {"number" | "rv" | "depth" | "strength" | "region" | "verdict"} LedgerOrder */
+/** @typedef {"verdict" | "band" | "region" | "none"} LedgerGrouping */
+/** @typedef {{ order: LedgerOrder, grouping: LedgerGrouping, most: number, verdict: string }} LedgerView */
+/** @typedef {VerdictWord | null | undefined} Verdict */
 /** @typedef {{ code: string, indexes: number[] }} LedgerGroup */
 
 /** @param {MapRow} row */
@@ -18,17 +22,24 @@ function regionAt(row) {
   return at < 0 ? REGIONS.length : at;
 }
 
-/** By what maps are sorted, the smallest first. @type {Record<LedgerOrder, (row: MapRow) => number>} */
+/** @param {Verdict} verdict */
+function verdictRank(verdict) {
+  return verdict ? VERDICTS.indexOf(verdict) : VERDICTS.length;
+}
+
+/** By what maps are sorted, the smallest first. @type {Record<LedgerOrder, (row: MapRow, verdict: Verdict) => number>} */
 const KEYS = {
   number: () => 0,
   rv: (row) => row.rv,
   depth: (row) => row.depth_mm,
   strength: (row) => -row.strength,
   region: regionAt,
+  verdict: (row, verdict) => verdictRank(verdict) + Math.min(0.999, row.rv),
 };
 
-/** @type {Record<LedgerGrouping, (row: MapRow) => { rank: number, code: string }>} */
+/** @type {Record<LedgerGrouping, (row: MapRow, verdict: Verdict) => { rank: number, code: string }>} */
 const GROUPINGS = {
+  verdict: (_, verdict) => ({ rank: verdictRank(verdict), code: `verdict.${verdict ?? "none"}` }),
   band(row) {
     const rank = BANDS.findIndex((end) => row.rv <= end);
     return { rank, code: `band.${rank}` };
@@ -40,9 +51,10 @@ const GROUPINGS = {
 /**
  * @param {Answer["maps"]} maps
  * @param {LedgerView} view
+ * @param {Answer["verdicts"]} [verdicts]
  * @returns {LedgerGroup[]}
  */
-export function ledgerOf(maps, { order, grouping, most }) {
+export function ledgerOf(maps, { order, grouping, most, verdict }, verdicts = null) {
   /** @type {Map<number, LedgerGroup>} */
   const groups = new Map();
   /** @type {number[]} */
@@ -51,10 +63,12 @@ export function ledgerOf(maps, { order, grouping, most }) {
   const keys = [];
   maps.forEach((map, index) => {
     if (map === undefined) return;
-    if ("error" in map) unfitted.push(index);
+    if ("error" in map && verdict === "") unfitted.push(index);
     if ("error" in map || map.rv > most) return;
-    keys[index] = KEYS[order](map);
-    const { rank, code } = GROUPINGS[grouping](map);
+    const own = verdicts?.[index];
+    if (verdict !== "" && own !== verdict) return;
+    keys[index] = KEYS[order](map, own);
+    const { rank, code } = GROUPINGS[grouping](map, own);
     const group = groups.get(rank);
     if (group === undefined) groups.set(rank, { code, indexes: [index] });
     else group.indexes.push(index);

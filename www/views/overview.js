@@ -6,11 +6,12 @@
 
 import { freshMaps } from "../session/decompositions.js";
 import { surroundingsOf } from "../draw/canvas.js";
+import { verdictMark } from "../draw/region.js";
 import { paintThumbnail } from "../draw/thumbnail.js";
 import { enteredNumber, enteredText, typeset } from "../text/figures.js";
 import { cellText, groupText, listedText, mapText, dipolePlaceText, rvLimitText, stepText, word } from "../text/words.js";
 import { make, need } from "./element.js";
-import { countsOf, ledgerOf } from "./ledger.js";
+import { countsOf, ledgerOf, VERDICTS } from "./ledger.js";
 import { keepPainted } from "./surface.js";
 
 /** @import { Session } from "../session/session.js" */
@@ -41,7 +42,7 @@ function placeOnScale(rv) {
 
 /** What a line is: an index of a map, or the heading of a group. @typedef {{ group: number, index: number | null }} Line */
 
-/** @typedef {{ element: HTMLElement, canvas: HTMLCanvasElement, name: HTMLElement, mark: HTMLElement, place: HTMLElement, dot: HTMLElement, rv: HTMLElement, map: object | null, painted: Float32Array | null }} Row */
+/** @typedef {{ element: HTMLElement, canvas: HTMLCanvasElement, name: HTMLElement, mark: HTMLElement, verdict: HTMLElement, place: HTMLElement, dot: HTMLElement, rv: HTMLElement, map: object | null, painted: Float32Array | null }} Row */
 
 /** @returns {Row} */
 function makeRow() {
@@ -49,16 +50,16 @@ function makeRow() {
   const canvas = document.createElement("canvas");
   canvas.setAttribute("aria-hidden", "true");
   const words = make("span", "", { class: "ledger-words" });
-  const [name, mark, place, scale, dot, rv] = ["name", "mark", "place", "scale", "dot", "rv"].map((part) =>
+  const [name, mark, verdict, place, scale, dot, rv] = ["name", "mark", "verdict", "place", "scale", "dot", "rv"].map((part) =>
     make("span", "", { class: `ledger-${part}` }),
   );
   mark.textContent = word("ledger.boundary");
   const title = make("span", "", { class: "ledger-title" });
-  title.append(name, " ", mark);
+  title.append(name, " ", mark, " ", verdict);
   words.append(title, " ", place);
   scale.append(dot);
   element.append(canvas, words, scale, " ", rv);
-  return { element, canvas, name, mark, place, dot, rv, map: null, painted: null };
+  return { element, canvas, name, mark, verdict, place, dot, rv, map: null, painted: null };
 }
 
 /** @param {Session} session */
@@ -75,7 +76,7 @@ export function showOverview(session) {
   const number = need("map-number", HTMLInputElement);
 
   /** @type {LedgerView} */
-  const view = { order: "rv", grouping: "band", most: Infinity };
+  const view = { order: "rv", grouping: "band", most: Infinity, verdict: "" };
   /** Whether order and grouping were chosen by hand. */
   let chosen = false;
   /** @type {LedgerGroup[]} */
@@ -101,6 +102,8 @@ export function showOverview(session) {
   let key = 0;
   /** @type {Inputs | null} */
   let inputs = null;
+  /** @type {Answer["verdicts"]} */
+  let verdicts = null;
   /** What was chosen last here, which the session may not have taken over yet. */
   let active = -1;
   let line = 46;
@@ -230,6 +233,21 @@ export function showOverview(session) {
     if (value > 0 && value <= 100) setMost(value / 100);
     else most.setAttribute("aria-invalid", "true");
   });
+  const verdict = need("ledger-verdict", HTMLSelectElement);
+  verdict.append(...VERDICTS.map((one) => make("option", word(`verdict.${one}`), { value: one })));
+  verdict.addEventListener("change", () => {
+    view.verdict = verdict.value;
+    arrange(true);
+  });
+  /** Without verdicts there is nothing to choose by them. */
+  function offerVerdicts() {
+    const some = answer()?.verdicts != null;
+    for (const element of document.querySelectorAll(".by-verdict")) {
+      if (element instanceof HTMLOptionElement) element.disabled = !some;
+      else if (element instanceof HTMLElement) element.hidden = !some;
+    }
+    if (!some) view.verdict = verdict.value = "";
+  }
   for (const field of [order, grouping]) {
     field.addEventListener("change", () => {
       chosen = true;
@@ -266,7 +284,7 @@ export function showOverview(session) {
     const top = Math.floor(list.scrollTop / line);
     const anchor = lines[top]?.index ?? lines[top + 1]?.index ?? null;
     const offset = list.scrollTop - line * (lineOf.get(anchor ?? -1) ?? 0);
-    groups = ledgerOf(held.maps, view);
+    groups = ledgerOf(held.maps, view, held.verdicts);
     lines = [];
     sequence = [];
     starts = [];
@@ -307,7 +325,10 @@ export function showOverview(session) {
     const failed = "error" in map;
     row.place.textContent = typeset(failed ? map.error.message : dipolePlaceText(map, session.read().columns, view.order));
     row.place.classList.toggle("warm", failed);
-    row.mark.hidden = failed || !map.at_boundary;
+    const verdict = held.verdicts?.[index];
+    row.mark.hidden = failed || !map.at_boundary || verdict === "edge";
+    row.verdict.replaceChildren(...(verdict ? [verdictMark(verdict), " ", word(`verdict.${verdict}`)] : []));
+    row.verdict.dataset.verdict = verdict ?? "";
     row.element.title = failed ? typeset(map.error.message) : "";
     row.rv.textContent = failed ? "" : typeset(cellText(map, session.read().columns, "rv"));
     row.element.classList.toggle("failed", failed);
@@ -462,6 +483,11 @@ export function showOverview(session) {
       if (other) pictures.clear();
       if (held.key !== key) refill();
       const anew = other || held.key !== key;
+      if (held.verdicts !== verdicts) {
+        verdicts = held.verdicts;
+        offerVerdicts();
+        refill();
+      }
       ({ key, inputs } = held);
       if (anew && !chosen) {
         // Moments follow one another; components come in no order.

@@ -16,11 +16,13 @@ import { confirmOn } from "./confirm.js";
 import { make, need } from "./element.js";
 import { figureTools, showFigure } from "./figure.js";
 import { noteElement } from "./notes.js";
+import { populationLines, withRule } from "./populations.js";
 import { fittedDecompositions, nounOf, seriesOf } from "./several.js";
 import { keepPainted } from "./surface.js";
 
 /** @import { Session } from "../session/session.js" */
 /** @import { ShareLine, SharesContent } from "../draw/curves.js" */
+/** @import { FigurePainter } from "./figure.js" */
 
 /** Shares of common practice, and how far the arrow keys move the threshold. */
 const COARSE = 0.01;
@@ -40,7 +42,10 @@ export function showShares(session) {
   const readout = need("share-readout", HTMLElement);
   const copy = need("copy-shares", HTMLButtonElement);
   const about = need("information-figure", HTMLElement);
+  const behind = need("share-behind", HTMLInputElement);
   let logarithmic = true;
+  /** Reference populations as they were last drawn. @type {{ of: Populations | null, lines: ShareLine[] }} */
+  let simulated = { of: null, lines: [] };
   /** @type {Summary | null} */
   let summary = null;
   /** @type {(ShareLine & { information: number | null })[]} */
@@ -54,9 +59,17 @@ export function showShares(session) {
   let grouped = null;
   let offered = false;
 
+  function behindNow() {
+    const { populations } = session.read();
+    if (!behind.checked || populations === null) return [];
+    if (simulated.of !== populations) simulated = { of: populations, lines: populationLines(populations) };
+    return simulated.lines;
+  }
+
   /** @returns {SharesContent} */
   const content = () => ({
     lines,
+    behind: behindNow(),
     logarithmic,
     most: Number(most.value),
     threshold: session.read().threshold,
@@ -326,6 +339,21 @@ export function showShares(session) {
     paint();
   });
   most.addEventListener("change", paint);
+  function showBehind() {
+    need("share-rule", HTMLElement).hidden = !behind.checked || behindNow().length === 0;
+    if (behind.checked) paint();
+  }
+  behind.addEventListener("change", () => {
+    showBehind();
+    paint();
+  });
+  session.watch(
+    ({ populations }) => populations,
+    (populations) => {
+      need("share-behind-choice", HTMLElement).hidden = populations === null;
+      showBehind();
+    },
+  );
   need("comparison-json", HTMLButtonElement).addEventListener("click", async () => {
     const report = await session.comparison();
     if (report !== null) saveBlob(report, "inward-comparison.json");
@@ -339,17 +367,19 @@ export function showShares(session) {
 
   section.addEventListener("toggle", ask);
 
+  /** @type {FigurePainter} */
+  const paintSaved = (width, around, penAt) => {
+    const height = sharesHeight(width, lines.length);
+    paintShares(penAt(0, 0), width, height, { ...content(), pointed: null }, around);
+    return height;
+  };
   const title = () => shareTitle(nounOf(session.read()));
   figureTools(session, need("share-tools", HTMLElement), () => ({
     name: "inward-near-dipolar-share",
     title: title(),
     description: `${shareAtText(session.read().threshold)}: ${valuesAt(session.read().threshold)}.`,
     width: SAVED.shares,
-    paint: (width, around, penAt) => {
-      const height = sharesHeight(width, lines.length);
-      paintShares(penAt(0, 0), width, height, { ...content(), pointed: null }, around);
-      return height;
-    },
+    paint: behindNow().length > 0 ? withRule(session.read().answer?.trust?.rule ?? "", paintSaved) : paintSaved,
   }));
   figureTools(session, need("information-tools", HTMLElement), () => ({
     name: "inward-information",

@@ -10,6 +10,7 @@ import { typeset } from "../text/figures.js";
 import { columnHead, guardText, mapText, moreRowsText, word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { make, need } from "./element.js";
+import { VERDICTS } from "./ledger.js";
 
 /** @import { NumberedMap } from "../export/rows.js" */
 /** @import { Session } from "../session/session.js" */
@@ -40,7 +41,7 @@ const COLUMN_KEYS = {
 };
 
 /** What is in words is not set like a number. */
-const IN_WORDS = ["name", "site", "side", "region", "boundary"];
+const IN_WORDS = ["name", "site", "side", "region", "boundary", "verdict"];
 
 /** What is missing comes last, whichever way. @param {unknown} a @param {unknown} b @param {number} way */
 function compareKeys(a, b, way) {
@@ -62,6 +63,19 @@ export function showTable(session) {
 
   const answer = () => session.read().answer;
 
+  /** Those of the engine, and the verdict where there are any. */
+  function columnsNow() {
+    const { columns, answer: held } = session.read();
+    return held?.verdicts == null ? columns : [...columns, { code: "verdict", label: word("verdict"), unit: "", meaning: "" }];
+  }
+  /** @param {number} index */
+  const verdictOf = (index) => answer()?.verdicts?.[index] ?? null;
+  /** @param {number} index */
+  function verdictCell(index) {
+    const verdict = verdictOf(index);
+    return verdict === null ? "" : word(`verdict.${verdict}`);
+  }
+
   /** @param {Answer["maps"]} maps */
   function sorted(maps) {
     const order = [...maps.keys()];
@@ -70,6 +84,8 @@ export function showTable(session) {
       order.map((at) => {
         const map = maps[at];
         if (sort.code === "name") return [at, map.name];
+        const verdict = verdictOf(at);
+        if (sort.code === "verdict") return [at, verdict && VERDICTS.indexOf(verdict)];
         return [at, "error" in map ? null : COLUMN_KEYS[sort.code](map)];
       }),
     );
@@ -109,7 +125,7 @@ export function showTable(session) {
     }
     columns.forEach(({ code }, at) => {
       if (code === "name") return;
-      const cell = make("td", typeset(map.cells[at]));
+      const cell = make("td", code === "verdict" ? verdictCell(index) : typeset(map.cells[at]));
       if (!IN_WORDS.includes(code)) cell.className = "figure";
       row.append(cell);
     });
@@ -118,7 +134,7 @@ export function showTable(session) {
 
   function show() {
     const held = answer();
-    const { columns } = session.read();
+    const columns = columnsNow();
     if (held === null || !panel.open) return;
     const start = performance.now();
     if (table.tHead?.rows[0].childElementCount !== columns.length + 1) writeHead(columns);
@@ -160,11 +176,11 @@ export function showTable(session) {
   });
   copy.addEventListener("click", async () => {
     const held = answer();
-    const { columns } = session.read();
+    const columns = columnsNow();
     if (held === null) return;
     const lines = sorted(freshMaps(held)).map((index) => {
       const map = held.maps[index];
-      const cells = "error" in map ? [guarded(map.name), map.error.message] : [guarded(map.name), ...map.cells.slice(1)];
+      const cells = "error" in map ? [guarded(map.name), map.error.message] : [guarded(map.name), ...map.cells.slice(1), verdictCell(index)];
       return [String(index + 1), ...cells];
     });
     const heading = [word("table.number"), ...columns.map(columnHead)];
@@ -181,7 +197,7 @@ export function showTable(session) {
     need(`table-${kind}`, HTMLButtonElement).addEventListener("click", () => {
       const held = answer();
       if (held === null) return;
-      const maps = freshMaps(held).map((map, at) => ({ number: at + 1, map }));
+      const maps = freshMaps(held).map((map, at) => ({ number: at + 1, map, verdict: verdictOf(at) }));
       saveBlob(new Blob([write(maps, held.settings.mapUnit)], { type }), `inward-table.${kind}`);
     });
   }

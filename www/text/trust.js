@@ -1,0 +1,121 @@
+/** The words of how far to trust a fit: verdict, region, reference populations and what they rest on. */
+
+import { enteredText, leftText, NO_BREAK, percentText, typeset } from "./figures.js";
+
+/** @type {Record<string, string>} */
+export const TRUST_WORDS = {
+  trust: "How far to trust it",
+  "verdict.waiting": "The verdict follows when the reference maps are drawn.",
+  "verdict.stopped": "Drawing was stopped: without all reference maps there is no verdict.",
+  "verdict.stop": "Stop drawing",
+  "verdict.go": "Continue drawing",
+  "verdict.progress": "Reference maps drawn",
+  "verdict.why": "Reasons, region and reference populations",
+  "verdict.reasons": "Reasons of the verdict",
+  "verdict.hints": "Hints on origin (common practice, no source)",
+  verdict: "Verdict",
+  "verdict.all": "all",
+  "verdict.dipolar": "dipolar",
+  "verdict.undecided": "undecided",
+  "verdict.not-dipolar": "not dipolar",
+  "verdict.edge": "edge",
+  "verdict.below-the-brain": "below the brain",
+  "verdict.lone-electrode": "lone electrode",
+  "verdict.none": "without a verdict",
+
+  region: "Region",
+  "region.repeats": "Repeats of this map",
+  "region.numbers": "Numbers of the region",
+  "region.legend": "Drawn in the views",
+  "region.cloud": "refitted under drawn errors",
+  "region.errors": "95 % of these",
+  "region.noise": "if the residual were independent noise",
+  "region.points": "repeats of this map",
+  "region.causes": "What each cause alone would do",
+  "region.cause": "Cause",
+  "region.size": "Size",
+  "region.sd": "Standard deviation of the position, mm",
+
+  populations: "Reference populations",
+  "populations.none": "None are drawn yet.",
+  "populations.curves": "Share of simulated maps with RV at most x, in %",
+  "populations.density": "Simulated maps by eccentricity and RV",
+  "populations.density-words": "The darker (on dark paper: lighter), the more of the simulated maps; the ring is this map. Draws whose fit ends at the boundary lie at the right end.",
+  "populations.here": "this map",
+  "populations.eccentricity": "eccentricity",
+  "populations.rv": "RV, %",
+  "populations.kind": "Sources",
+  "populations.draws": "Maps",
+  "populations.median": "Median RV, %",
+  "populations.range": "5–95 % of them, RV in %",
+  "populations.lower": "Lower RV than this map, %",
+  "populations.lower-here": "Lower at this depth, %",
+  "populations.boundary": "At the boundary, %",
+  "populations.kind.noise": "noise",
+  "populations.kind.one-dipole": "one dipole",
+  "populations.kind.two-dipoles": "two dipoles",
+  "populations.kind.five-dipoles": "five dipoles",
+  "populations.kind.twenty-dipoles": "twenty dipoles",
+  "populations.kind.hundred-dipoles": "hundred dipoles",
+  "shares.behind": "beside reference populations",
+
+  "trust.settings": "What this rests on, to be changed",
+  "trust.defaults": "Back to defaults",
+  "trust.errors": "Errors of the fit",
+  "trust.noise": "Noise, in the maps’ unit; without it, that of the residual",
+  "trust.sources": "Sources of reference populations",
+  "trust.limits": "Limits of the verdict",
+  "trust.invalid": "This lies outside of its limits and was not taken.",
+  "set.errors.electrodesMm": "Electrodes misplaced, mm",
+  "set.errors.skullRatio": "Brain-to-skull ratio, from and to; 0 for that of the head",
+  "set.errors.sphere": "Sphere off, times the standard error of its fit",
+  "set.errors.backgroundSources": "Weak background sources; 0 for independent noise",
+  "set.errors.draws": "Refits",
+  "set.errors.seed": "Seed of the refits",
+  "set.noise.sd": "Standard deviation at an electrode",
+  "set.noise.singleTrialSd": "or that of a single trial",
+  "set.noise.trials": "and the number of trials",
+  "set.sources.draws": "Maps of each population",
+  "set.sources.seed": "Seed of the populations",
+  "set.sources.maxEccentricity": "Largest eccentricity",
+  "set.sources.floor": "Lowest z in brain radii, and its rise to the front",
+  "set.sources.orientation": "Orientation",
+  "set.sources.noise": "Noise of the single dipoles, share of power",
+  "set.limits.oneDipole": "Dipolar: RV within this share of single dipoles",
+  "set.limits.ruledOut": "Not dipolar: RV beyond this share of single dipoles",
+  "set.limits.others": "Dipolar: as low in at most this share of two and of hundred",
+  "set.limits.loneElectrode": "Lone electrode: share of the power at one channel",
+  "set.limits.coverageDeg": "Outside coverage: degrees to the nearest electrode",
+  "orientation.isotropic": "in any direction",
+  "orientation.radial": "radial",
+  "orientation.tangential": "tangential",
+};
+
+/** @param {Populations} populations @param {number | null} left seconds @param {boolean} told whether a verdict is told already */
+export function drawnText({ done, total }, left, told) {
+  const text = `${done.toLocaleString("en-GB")} of ${total.toLocaleString("en-GB")} reference maps drawn`;
+  const early = told ? "; the verdict is of a part so far" : "";
+  return `${text}${left === null ? "" : `, ${leftText(left)} left`}${early}`;
+}
+
+/** This map in a figure of populations. @param {number} rv */
+export function thisMapText(rv) {
+  return `${TRUST_WORDS["populations.here"]}: RV ${percentText(rv)}`;
+}
+
+/** The first letter as at the beginning of a sentence. @param {string} text */
+export function beginning(text) {
+  return typeset(`${text.slice(0, 1).toUpperCase()}${text.slice(1)}`);
+}
+
+/** What a field takes, and what holds without an entry. @param {[number, number]} limits @param {string} standard */
+export function fieldText([least, most], standard) {
+  const range = most > 1e12 ? "above 0" : `${enteredText(least)} to ${most.toLocaleString("en-GB")}`;
+  return typeset(standard === "" ? range : `${range}; ${standard} unless changed`).replaceAll(" to ", `${NO_BREAK}to${NO_BREAK}`);
+}
+
+/** A verdict's word, and the rest of its sentence. @param {{ title: string, sentence: string }} verdict */
+export function verdictParts({ title, sentence }) {
+  if (!sentence.toLowerCase().startsWith(title)) return [beginning(title), ` ${sentence}`];
+  return [sentence.slice(0, title.length), sentence.slice(title.length)];
+}
