@@ -730,7 +730,7 @@ type WorkerTask =
   | { kind: "thumbnails"; key: number; indexes: number[]; size: number }
   | { kind: "summary"; request: SummaryRequest }
   | { kind: "matches"; keys: number[]; own: Float64Array; others: Float64Array; names: string[] }
-  | { kind: "report"; key: number }
+  | { kind: "report"; key: number; populations: GivenPopulations | null }
   | { kind: "comparison"; keys: number[]; members: Omit<ComparedStudy, "study">[]; settings: ComparisonSettings }
   | { kind: "population-key"; key: number }
   | { kind: "population"; key: number; population: PopulationKind; first: number; last: number }

@@ -135,8 +135,11 @@ export function makeInquiries(store, pool, fail, fitting) {
 
     /** The whole report of the present answer. @returns {Promise<Blob | null>} */
     async report() {
-      const { answer } = store.read();
-      return answer === null ? null : inTime((engine, take) => engine.ask({ kind: "report", key: answer.key }, take));
+      const { answer, populations: drawn } = store.read();
+      if (answer === null) return null;
+      // Without all of them a report would be another one each time.
+      const populations = drawn?.state === "done" ? { name: `${drawn.key} ${drawn.kinds.noise.length / 2}`, kinds: drawn.kinds } : null;
+      return inTime((engine, take) => engine.ask({ kind: "report", key: answer.key, populations }, take));
     },
   };
 }
