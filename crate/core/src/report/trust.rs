@@ -278,9 +278,14 @@ fn verdict_text(word: Word) -> &'static str {
 fn reason(reason: &Reason) -> ReasonReport {
     let share = |share: f64| format!("{} %", percent(share));
     let (value, limit) = (reason.value, reason.limit.unwrap_or(f64::NAN));
-    let among = |what: &str, how: &str| {
-        format!("{} of simulated {what} leave less over ({how} the limit of {}).", capital(&share(value)), share(limit))
+    let among = |what: &str, how: &str| match value > 0.0 {
+        true => {
+            format!("{} of the simulated {what} leave less over ({how} the limit of {}).", share(value), share(limit))
+        }
+        false => format!("None of the simulated {what} leaves less over (limit {}).", share(limit)),
     };
+    // Of all or of those at about this depth, whichever is less.
+    let single = "single dipoles, of all or of those at about this depth,";
     let text = match reason.code {
         ReasonCode::OneElectrode => {
             format!("One electrode carries {} of the map's power (limit {}).", share(value), share(limit))
@@ -292,9 +297,9 @@ fn reason(reason: &Reason) -> ReasonReport {
         ReasonCode::BelowFloor => {
             format!("The position lies {} brain radii below the floor of the modelled brain.", hundredths(-value))
         }
-        ReasonCode::LikeOneDipole => among("single dipoles", "within"),
-        ReasonCode::SeldomOneDipole => among("single dipoles", "over"),
-        ReasonCode::UnlikeOneDipole => among("single dipoles", "over"),
+        ReasonCode::LikeOneDipole => among(single, "within"),
+        ReasonCode::SeldomOneDipole => among(single, "over"),
+        ReasonCode::UnlikeOneDipole => among(single, "over"),
         ReasonCode::RareInTwo => among("pairs of dipoles", "within"),
         ReasonCode::UsualInTwo => among("pairs of dipoles", "over"),
         ReasonCode::RareInHundred => among("mixtures of a hundred dipoles", "within"),
@@ -307,13 +312,6 @@ fn reason(reason: &Reason) -> ReasonReport {
         ReasonCode::SearchUnfinished => "The search ended before it reached a minimum.".into(),
     };
     ReasonReport { code: reason.code, text, value, limit: reason.limit }
-}
-
-fn capital(text: &str) -> String {
-    match text.strip_prefix('u') {
-        Some(rest) => format!("U{rest}"),
-        None => text.to_owned(),
-    }
 }
 
 fn hint_text(hint: Hint) -> &'static str {
@@ -478,7 +476,7 @@ impl Trust {
             reasons: verdict.reasons,
             hints: verdict.hints,
         };
-        let mut notes = vec![PUBLISHED];
+        let mut notes = Vec::new();
         if region.reaches_boundary {
             notes.push("The ellipsoid reaches beyond the modelled brain; of a source there it says nothing.");
         }
@@ -534,8 +532,8 @@ fn region_rows(region: &RegionReport, unit: Written) -> Vec<Row> {
         row(
             "direction_deg",
             "Direction",
-            format!("within {}", millimetres(region.direction_deg)),
-            "°",
+            format!("within {}°", millimetres(region.direction_deg)),
+            "",
             "Angle that 95 % of the refitted moments stay within.",
         ),
         row(
