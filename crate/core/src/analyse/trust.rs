@@ -32,6 +32,10 @@ pub(super) struct Simulated {
     refits: Arc<OnceLock<Refits>>,
     references: Arc<Mutex<Kept>>,
     repeats: Arc<OnceLock<Option<Repeats>>>,
+    /// Which electrodes are neighbours.
+    neighbours: Arc<OnceLock<Vec<[usize; 2]>>>,
+    /// Their usual angle.
+    spacing_deg: Arc<OnceLock<f64>>,
 }
 
 /// Populations by the place of their kind.
@@ -56,6 +60,8 @@ impl Simulated {
             refits: if same && drawn(own) == drawn(others) { Arc::clone(&kept.refits) } else { Arc::default() },
             references: if same { Arc::clone(&kept.references) } else { Arc::default() },
             repeats: Arc::default(),
+            neighbours: if same { Arc::clone(&kept.neighbours) } else { Arc::default() },
+            spacing_deg: if same { Arc::clone(&kept.spacing_deg) } else { Arc::default() },
         }
     }
 }
@@ -210,7 +216,9 @@ impl Study {
             ruled_out: limits.ruled_out,
             others: limits.others,
             lone_electrode: limits.lone_electrode,
-            coverage_deg: limits.coverage_deg.unwrap_or_else(|| usual_spacing_deg(directions)),
+            coverage_deg: limits
+                .coverage_deg
+                .unwrap_or_else(|| *self.simulated.spacing_deg.get_or_init(|| usual_spacing_deg(directions))),
         };
         let dipole = &map.dipole;
         let brain_mm = self.shells.brain_ratio() * self.placement.sphere.sphere.radius;
@@ -267,12 +275,13 @@ impl Study {
         }
         from.push(caused("noise", vec![known.unwrap_or(scatter.noise_sd)], &scatter.noise));
         let noise = self.noise_only(map, values, fit, &tangent, known);
-        let neighbours = neighbours(self.fitter.field().directions(), NEIGHBOURS);
+        let directions = self.fitter.field().directions();
+        let pairs = self.simulated.neighbours.get_or_init(|| neighbours(directions, NEIGHBOURS));
         let constant = vec![1.0 / (values.len() as f64).sqrt(); values.len()];
         let basis: Vec<Vec<f64>> = core::iter::once(constant).chain(tangent.basis.iter().cloned()).collect();
         // What rounding leaves has no structure.
         let structure = (map.residual_variance > 1e-12)
-            .then(|| Autocorrelation::new(&scaled(&map.residual), &basis, &neighbours))
+            .then(|| Autocorrelation::new(&scaled(&map.residual), &basis, pairs))
             .flatten();
         let reach = self.fitter.field().reach();
         let report = RegionReport {
