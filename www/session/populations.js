@@ -17,6 +17,9 @@ const KEPT_POPULATIONS = 4;
 /** Draws that came in are shown together this often. */
 const DRAWN_MS = 300;
 
+/** Drawing begins when nothing has changed for so long: who goes on working needs the workers. */
+const QUIET_MS = 500;
+
 /** A verdict is told of this part of the draws, and once more of all. */
 const FIRST_PART = 0.1;
 
@@ -44,6 +47,9 @@ export function makePopulations(store, pool, fail, fitting) {
   let study = -1;
   let drawing = false;
   let timer = 0;
+  /** When something changed last. */
+  let changed = 0;
+  let waking = 0;
   /** What was asked last, so that it is asked once. */
   const asked = { trust: "", verdicts: -1 };
   let asking = false;
@@ -203,7 +209,11 @@ export function makePopulations(store, pool, fail, fitting) {
     if (study !== answer.key) findKey(engine, answer).catch(refused);
     if (answer.sheet !== null) askTrust(engine, answer).catch(refused);
     if (held === null || !fitting.isAtRest()) return;
-    if (level(held) < 2 && !held.stopped && !drawing) draw(engine, held);
+    const quiet = performance.now() - changed;
+    if (level(held) < 2 && !held.stopped && !drawing) {
+      if (quiet >= QUIET_MS) draw(engine, held);
+      else wakeIn(QUIET_MS - quiet);
+    }
     if (level(held) === 2 && answer.verdicts === null) askVerdicts(engine, answer).catch(refused);
   }
 
@@ -214,11 +224,23 @@ export function makePopulations(store, pool, fail, fitting) {
     setTimeout(look);
   }
 
-  store.watch(({ answer }) => answer?.key, lookSoon);
-  store.watch(({ answer }) => answer?.chosen, lookSoon);
+  /** @param {number} milliseconds */
+  function wakeIn(milliseconds) {
+    clearTimeout(waking);
+    waking = /** @type {any} */ (setTimeout)(lookSoon, milliseconds);
+  }
+
+  function noteChange() {
+    changed = performance.now();
+    lookSoon();
+  }
+
+  store.watch(({ answer }) => answer?.key, noteChange);
+  store.watch(({ answer }) => answer?.chosen, noteChange);
   store.watch(({ answer }) => answer?.sheet, lookSoon);
   store.watch(({ answer }) => answer?.fitted, lookSoon);
-  store.watch(({ progress }) => progress, lookSoon);
+  store.watch(({ progress }) => progress, noteChange);
+  store.watch(({ settings }) => settings, noteChange);
   store.watch(({ phase }) => phase, lookSoon);
   store.watch(({ populations }) => populations, lookSoon);
 
@@ -227,6 +249,7 @@ export function makePopulations(store, pool, fail, fitting) {
     drawPopulations() {
       if (held === null) return;
       held.stopped = false;
+      changed = 0;
       show();
     },
 
