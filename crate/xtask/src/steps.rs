@@ -4,10 +4,15 @@ use crate::tools::Tools;
 use crate::workspace::{Workspace, run};
 use crate::{digits, dist, licences, paths, reproduce, rules, sealed, wasm};
 use anyhow::{Context, Result, bail};
+use std::thread::Scope;
 use std::time::Instant;
 
 /// Runs every check; what fails is told at the end, and those that do not depend on it run all the same.
 pub fn test(workspace: &Workspace, install: bool) -> Result<()> {
+    std::thread::scope(|scope| run_all(workspace, install, scope))
+}
+
+fn run_all<'scope>(workspace: &'scope Workspace, install: bool, scope: &'scope Scope<'scope, '_>) -> Result<()> {
     let mut steps = Steps::default();
     let Some(mut tools) = steps.step("what the checks need", || Tools::ready(workspace, install)) else {
         return steps.finish();
@@ -30,8 +35,9 @@ pub fn test(workspace: &Workspace, install: bool) -> Result<()> {
     if let Some(dist) = &dist {
         steps.step("no machine path", || paths::check(workspace, dist));
         steps.step("sealed", || sealed::check(dist));
-        steps.step("two clones, equal bytes", || reproduce::check(workspace));
     }
+    // Its compiler works on one core for most of the time: the tests are compiled meanwhile.
+    let twin = dist.is_some().then(|| scope.spawn(|| reproduce::check(workspace)));
     steps.step("who imports whom", || rules::check(workspace));
     steps.step("numeric crates", || digits::check(workspace));
     steps.step("licences", || licences::check(workspace));
@@ -43,6 +49,12 @@ pub fn test(workspace: &Workspace, install: bool) -> Result<()> {
     steps.step("tests of the build tool", || {
         cargo(&["test", "--package=inward-xtask", "--profile=dev", "--locked", "--quiet"])
     });
+    steps.step("compile the tests", || {
+        cargo(&["test", "--workspace", "--exclude=inward-xtask", "--locked", "--quiet", "--no-run"])
+    });
+    if let Some(twin) = twin {
+        steps.step("two clones, equal bytes", || twin.join().unwrap_or_else(|_| bail!("the second build panicked")));
+    }
     steps.step("wait for what is being installed", || tools.wait(workspace));
     if dist.is_some() {
         steps.step("tests, engine in Node, page in browsers", || {
