@@ -22,7 +22,8 @@ const SHOWING_MS = 60;
 const TELLING_MS = 700;
 
 /**
- * @param {{ read: () => SessionState, write: (patch: Partial<SessionState>) => void }} store
+ * @param {{ read: () => SessionState, write: (patch: Partial<SessionState>) => void,
+ *           writeFirst: (patch: Partial<SessionState>, shown?: boolean) => void }} store
  * @param {() => Pool | null} pool
  * @param {(fault: unknown) => void} fail
  */
@@ -141,7 +142,7 @@ export function makeFitting(store, pool, fail) {
     const before = entry(run.id)?.answer;
     if (before) pool()?.forget(before.key);
     const answer = { ...run.draft, sheet: isCurrent(run.id) ? sheet : null };
-    if (isCurrent(run.id)) store.write({ phase: "answered", answer });
+    if (isCurrent(run.id)) store.writeFirst({ phase: "answered", answer }, true);
     else writeEntry(run.id, { answer });
   }
 
@@ -262,7 +263,7 @@ export function makeFitting(store, pool, fail) {
     };
     runs.set(id, run);
     begin(run);
-    if (isCurrent(id)) store.write({ phase: "busy", failure: null, progress: progress() });
+    if (isCurrent(id)) store.writeFirst({ phase: "busy", failure: null, progress: progress() });
     else if (one.failure !== null) writeEntry(id, { failure: null });
     try {
       if (isCurrent(id)) {

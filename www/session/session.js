@@ -62,14 +62,18 @@ export function makeSession() {
 
   /** Columns of the table of maps by the maps' unit. @type {Partial<Record<MapUnit, TableColumn[]>>} */
   let columnsOf = {};
+  /** With what follows from it. @param {Partial<SessionState>} patch */
+  const whole = (patch) => {
+    const state = { ...held.read(), ...patch };
+    const columns = columnsOf[state.settings.mapUnit] ?? state.columns;
+    return { ...patch, decompositions: mirrored(state), columns };
+  };
   const store = {
     ...held,
     /** @param {Partial<SessionState>} patch */
-    write(patch) {
-      const state = { ...held.read(), ...patch };
-      const columns = columnsOf[state.settings.mapUnit] ?? state.columns;
-      held.write({ ...patch, decompositions: mirrored(state), columns });
-    },
+    write: (patch) => held.write(whole(patch)),
+    /** @param {Partial<SessionState>} patch @param {boolean} [shown] */
+    writeFirst: (patch, shown) => held.writeFirst(whole(patch), shown),
   };
 
   /** @type {Pool | null} */
@@ -101,8 +105,9 @@ export function makeSession() {
    * One change of inputs or settings, which can be undone.
    * @param {Partial<SessionState>} patch
    * @param {string[]} what changes: settings by name, or "input"
+   * @param {(patch: Partial<SessionState>) => void} [write]
    */
-  function step(patch, what) {
+  function step(patch, what, write = store.write) {
     const state = store.read();
     const kept = patch.decompositions ?? state.decompositions;
     // Answers of those that stay go on; those of the others are there again when it is undone.
@@ -110,7 +115,7 @@ export function makeSession() {
     const steps = [...state.past.slice(1 - MOST_STEPS), stepOf({ ...state, decompositions: before }, what)];
     const held = () => heldBytes(steps.flatMap(({ decompositions }) => decompositions.map(({ inputs }) => inputs)));
     while (steps.length > 1 && held() > MOST_PAST_BYTES) steps.shift();
-    store.write({ past: steps, said: null, refused: null, changed: [], ...patch });
+    write({ past: steps, said: null, refused: null, changed: [], ...patch });
   }
 
   /** Decompositions as they were, with the answers that there are for them. @param {Decomposition[]} wanted */
@@ -142,8 +147,9 @@ export function makeSession() {
    * Other inputs, with what of the settings outlives the exchange.
    * @param {Inputs} inputs
    * @param {Input[]} [replaced]
+   * @param {(patch: Partial<SessionState>) => void} [write]
    */
-  function exchange(inputs, replaced = []) {
+  function exchange(inputs, replaced = [], write = store.write) {
     const { inputs: held, settings, example, decompositions, current } = store.read();
     const other = KINDS.filter((kind) => held[kind] !== inputs[kind] && isOtherTable(held[kind], inputs[kind]));
     const names = namedFiles(inputs).map(({ name }) => name);
@@ -167,6 +173,7 @@ export function makeSession() {
         },
       },
       ["input"],
+      write,
     );
   }
 
@@ -193,7 +200,8 @@ export function makeSession() {
       return takeSeveral([own], true);
     }
     const { inputs, replaced } = placedInputs(before.example === null ? before.inputs : NO_INPUTS, given);
-    exchange(inputs, replaced);
+    // The engine is asked before the views are told: they are written while it reads.
+    exchange(inputs, replaced, store.writeFirst);
     const { said } = store.read();
     const last = before.inputs.maps;
     // Two matrices, one after the other: the second may belong to the first.
@@ -238,6 +246,7 @@ export function makeSession() {
         said: { replaced: gone ? namedFiles(inputs).map(({ name }) => name) : [], dropped: [], former: gone ? former : undefined },
       },
       ["input"],
+      store.writeFirst,
     );
     await ask();
     await passOver(first.id, made.map(({ id }) => id));

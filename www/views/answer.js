@@ -23,6 +23,7 @@ export function showAnswer(session) {
     (empty) => {
       need("empty", HTMLElement).hidden = !empty;
     },
+    "first",
   );
   session.watch(
     // A map without a sheet says why by its own error.
@@ -50,5 +51,6 @@ export function showAnswer(session) {
       hint.textContent = !sheet && map !== undefined && "error" in map ? map.error.hint : "";
       hint.hidden = hint.textContent === "";
     },
+    "first",
   );
 }

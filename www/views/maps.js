@@ -161,6 +161,7 @@ export function showMaps(session) {
       changing = null;
       paint();
     },
+    "first",
   );
   session.watch((state) => state.pointed, paint);
 }

@@ -38,16 +38,17 @@ export function showStatus(session) {
     need("main", HTMLElement).focus();
   });
 
-  session.watch(
-    (state) => state.phase,
-    (phase) => {
-      document.documentElement.dataset.state = phase;
-    },
-  );
+  /** @param {Phase} phase */
+  const say = (phase) => {
+    document.documentElement.dataset.state = phase;
+  };
+  // That it is at work is said at once, what came of it when all views show it.
+  session.watch((state) => state.phase === "busy", (busy) => busy && say("busy"), "first");
   let slow = false;
   let timer = 0;
   const show = () => {
     const state = session.read();
+    say(state.phase);
     const busy = state.phase === "busy" || state.progress !== null;
     if (!busy) {
       clearTimeout(timer);
