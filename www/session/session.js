@@ -11,6 +11,7 @@ import { makeStore } from "./store.js";
 import { faultOf } from "../engine/fault.js";
 import { pageFault } from "../text/faults.js";
 import { emptyDecomposition, entitiesOf, groupedInputs, mirrored, newDecompositions, SHARED } from "./decompositions.js";
+import { recognisedInNeed } from "./recognition.js";
 import { heldBytes, isEmpty, namedFiles, NO_INPUTS, placedInputs } from "./inputs.js";
 import { isMisfit, isUnreadable } from "./help.js";
 import { differingSettings, firstLine, FIRST_SETTINGS, isOtherTable, settingsForOther } from "./settings.js";
@@ -252,6 +253,42 @@ export function makeSession() {
     await passOver(first.id, made.map(({ id }) => id));
   }
 
+  /**
+   * The first of many tables is asked about before the others are recognised, if nothing else is there and the electrodes
+   * are among what is known.
+   * @param {Input[]} known
+   */
+  function takeEarly(known) {
+    const { inputs, decompositions } = store.read();
+    if (!isEmpty(inputs) || decompositions.length > 1) return null;
+    const [own] = groupedInputs(known, NO_INPUTS, 1);
+    if (own === undefined || (own.electrodes === null && own.maps?.role !== "electrodes-and-maps")) return null;
+    exchange(own, [], store.writeFirst);
+    return { own, answered: ask() };
+  }
+
+  /**
+   * All files, of which some were taken early.
+   * @param {Input[]} given
+   * @param {NonNullable<ReturnType<typeof takeEarly>>} early
+   */
+  async function takeRest(given, { own, answered }) {
+    const groups = groupedInputs(given, NO_INPUTS);
+    const { inputs, decompositions, current } = store.read();
+    /** @param {Inputs} one */
+    const filesOf = (one) => [one.maps, one.electrodes, ...one.others];
+    const [known, now] = [own, groups[0] ?? NO_INPUTS].map(filesOf);
+    const same = known.length === now.length && known.every((input) => now.includes(input));
+    // What has changed meanwhile, or belongs together otherwise, is taken as if nothing had been taken early.
+    if (inputs !== own || decompositions.length > 1 || !same) return takeIn(given);
+    const [former] = decompositions;
+    const [first, ...others] = newDecompositions(groups, former, []);
+    store.write({ decompositions: [{ ...former, name: first.name, subject: first.subject }, ...others] });
+    fitting.startOthers();
+    await answered;
+    await passOver(current, [current, ...others.map(({ id }) => id)]);
+  }
+
   /** Of tables that came together, one that leads to no answer is told of, and another is shown. @param {number} id @param {number[]} ids */
   async function passOver(id, ids) {
     const isStill = () => store.read().current === id && store.read().answer === null && store.read().failure !== null;
@@ -359,12 +396,16 @@ export function makeSession() {
     /**
      * The input with what it is by its content, told as soon as the engine runs; without it where it cannot be read.
      * @param {Input} input
+     * @param {boolean} [aside] by a helper
      * @returns {Promise<Input>}
      */
-    async recognised(input) {
+    async recognised(input, aside = false) {
       const engine = await started;
+      const task = /** @type {const} */ ({ kind: "roleOf", name: input.name, content: input.content });
       try {
-        return { ...input, role: await engine.ask({ kind: "roleOf", name: input.name, content: input.content }) };
+        // A helper that is lost says nothing about the file.
+        const role = aside ? await engine.askAside(task).catch(() => engine.ask(task)) : await engine.ask(task);
+        return { ...input, role };
       } catch (fault) {
         return { ...input, fault: /** @type {Fault} */ (fault) };
       }
@@ -376,7 +417,10 @@ export function makeSession() {
      * @param {(Input | Promise<Input>)[]} given
      */
     async add(given) {
-      await this.bring(given, takeIn);
+      let early = /** @type {ReturnType<typeof takeEarly>} */ (null);
+      await this.bring(given, (inputs) => (early === null ? takeIn(inputs) : takeRest(inputs, early)), (known) => {
+        early ??= takeEarly(known);
+      });
     },
 
     /** Files beside what is there, each table of maps a decomposition of its own. @param {(Input | Promise<Input>)[]} given */
@@ -393,9 +437,10 @@ export function makeSession() {
     /**
      * @param {(Input | Promise<Input>)[]} given
      * @param {(inputs: Input[]) => Promise<void>} take
+     * @param {(known: Input[]) => void} [hear] of many files, those at the beginning that are recognised
      */
-    async bring(given, take) {
-      const taken = await Promise.allSettled(given.map(async (input) => this.recognised(await input)));
+    async bring(given, take, hear = () => {}) {
+      const taken = await recognisedInNeed(given, this.recognised, hear);
       const inputs = taken.flatMap((one) => (one.status === "fulfilled" ? [one.value] : []));
       const readable = inputs.filter(({ role }) => role !== undefined);
       const spoilt = inputs.filter(({ role }) => role === undefined);
