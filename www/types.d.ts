@@ -904,6 +904,8 @@ interface SessionState {
   progress: Progress | null;
   /** Maps still to be fitted were given up. */
   stopped: boolean;
+  /** Whether files of many that came together are still to be recognised. */
+  arriving: boolean;
   /** The residual variance up to which maps count as near-dipolar. */
   threshold: number;
   /** Of the current decomposition. */

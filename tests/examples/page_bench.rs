@@ -51,7 +51,7 @@ fn memory() -> Option<u64> {
         .max()
 }
 
-/// Waits until all maps are fitted; returns when the first answer was there, when all were, and the most memory.
+/// Waits until all tables are there and all maps are fitted; returns when the first answer was there, when all were, and the most memory.
 fn watched(page: &Page, change: &str) -> (Duration, Duration, Option<u64>) {
     let mut most = memory();
     page.value(change);
@@ -65,7 +65,8 @@ fn watched(page: &Page, change: &str) -> (Duration, Duration, Option<u64>) {
         if page.state() == "answered" {
             first.get_or_insert_with(|| start.elapsed());
         }
-        quiet = if page.rests() { quiet + 1 } else { 0 };
+        let tables = page.value("return document.querySelectorAll('.decomposition').length");
+        quiet = if page.rests() && tables == 286 { quiet + 1 } else { 0 };
     }
     (first.expect("an answer"), start.elapsed() - Duration::from_millis(500), most)
 }

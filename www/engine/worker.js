@@ -60,6 +60,11 @@ function withoutForeign(study, settings) {
   return own;
 }
 
+/** Gives the memory of what is read back: until the collector comes, hundreds of tables would add up. @param {InwardContent} content */
+function giveBack(content) {
+  if (content instanceof Uint8Array) /** @type {any} */ (content.buffer).transfer?.(0);
+}
+
 /** @param {number} key */
 function studyOf(key) {
   const known = studies.get(key);
@@ -74,6 +79,7 @@ function studyOf(key) {
   const latest = latestStudy;
   studies.set(key, study);
   namedRequests.set(key, { settings: plain.settings, lenient });
+  if (![...namedRequests.values()].some(({ files }) => files === plain.files)) for (const { content } of plain.files ?? []) giveBack(content);
   latestStudy = study;
   if (latest !== null && ![...studies.values()].includes(latest)) latest.close();
   return study;
@@ -190,7 +196,8 @@ async function answerTask(message) {
     case "columns":
       return self.postMessage({ id, value: workerEngine.columns(message.unit) });
     case "roleOf":
-      return self.postMessage({ id, value: workerEngine.roleOf(message.name, message.content) });
+      self.postMessage({ id, value: workerEngine.roleOf(message.name, message.content) });
+      return giveBack(message.content);
     case "warm":
       await warmUpOn(message.request);
       return self.postMessage({ id, value: null });

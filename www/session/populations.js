@@ -183,8 +183,9 @@ export function makePopulations(store, pool, fail, fitting) {
   function look() {
     looking = false;
     const engine = pool();
-    const { answer, phase } = store.read();
-    if (engine === null) return;
+    const { answer, phase, arriving } = store.read();
+    // Files that came together are recognised first.
+    if (engine === null || arriving) return;
     if (answer === null) {
       if (study !== -1) engine.stopDrawing();
       study = -1;
@@ -242,6 +243,7 @@ export function makePopulations(store, pool, fail, fitting) {
   store.watch(({ progress }) => progress, noteChange);
   store.watch(({ settings }) => settings, noteChange);
   store.watch(({ phase }) => phase, lookSoon);
+  store.watch(({ arriving }) => arriving, lookSoon);
   store.watch(({ populations }) => populations, lookSoon);
 
   return {

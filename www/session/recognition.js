@@ -1,7 +1,7 @@
 /** In which order files that came together are recognised. */
 
 /** From so many on, the first answer does not wait until all are recognised. */
-const MANY = 8;
+export const MANY = 8;
 
 /** @param {Input | undefined} input */
 const isTable = (input) => input?.role === "maps" || input?.role === "electrodes-and-maps";

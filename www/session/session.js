@@ -11,7 +11,7 @@ import { makeStore } from "./store.js";
 import { faultOf } from "../engine/fault.js";
 import { pageFault } from "../text/faults.js";
 import { emptyDecomposition, entitiesOf, groupedInputs, mirrored, newDecompositions, SHARED } from "./decompositions.js";
-import { recognisedInNeed } from "./recognition.js";
+import { MANY, recognisedInNeed } from "./recognition.js";
 import { heldBytes, isEmpty, namedFiles, NO_INPUTS, placedInputs } from "./inputs.js";
 import { isMisfit, isUnreadable } from "./help.js";
 import { differingSettings, firstLine, FIRST_SETTINGS, isOtherTable, settingsForOther } from "./settings.js";
@@ -56,6 +56,7 @@ export function makeSession() {
       pointed: null,
       progress: null,
       stopped: false,
+      arriving: false,
       threshold: 0.1,
       populations: null,
     }),
@@ -440,7 +441,9 @@ export function makeSession() {
      * @param {(known: Input[]) => void} [hear] of many files, those at the beginning that are recognised
      */
     async bring(given, take, hear = () => {}) {
+      if (given.length >= MANY) store.write({ arriving: true });
       const taken = await recognisedInNeed(given, this.recognised, hear);
+      store.writeFirst({ arriving: false });
       const inputs = taken.flatMap((one) => (one.status === "fulfilled" ? [one.value] : []));
       const readable = inputs.filter(({ role }) => role !== undefined);
       const spoilt = inputs.filter(({ role }) => role === undefined);

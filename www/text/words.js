@@ -62,6 +62,7 @@ const WORDS = {
   "state.loading": "Starting the engine",
   "state.ready": "Ready for a map",
   "state.busy": "Computing",
+  "state.arriving": "Reading files",
   "state.answered": "Answered",
   "state.failed": "That did not work",
   "state.stopped": "Stopped",

@@ -7,13 +7,14 @@ import { need } from "./element.js";
 /** @import { Session } from "../session/session.js" */
 
 /** Files are in, and no map. @param {SessionState} state */
-function isWaiting({ phase, inputs, progress, stopped }) {
-  return phase === "ready" && progress === null && !stopped && !isEmpty(inputs);
+function isWaiting({ phase, inputs, progress, stopped, arriving }) {
+  return phase === "ready" && progress === null && !arriving && !stopped && !isEmpty(inputs);
 }
 
 /** @param {SessionState} state */
 function statusText(state) {
   if (state.progress !== null) return progressText(state.progress);
+  if (state.arriving) return word("state.arriving");
   if (state.stopped) return word("state.stopped");
   if (isWaiting(state)) return waitingText(namedFiles(state.inputs));
   return word(`state.${state.phase}`);
@@ -49,7 +50,7 @@ export function showStatus(session) {
   const show = () => {
     const state = session.read();
     say(state.phase);
-    const busy = state.phase === "busy" || state.progress !== null;
+    const busy = state.phase === "busy" || state.progress !== null || state.arriving;
     if (!busy) {
       clearTimeout(timer);
       timer = 0;
@@ -69,7 +70,8 @@ export function showStatus(session) {
     // Without an answer yet, this is all that tells of tables that are in.
     status.classList.toggle("small", !isWaiting(state));
     status.classList.toggle("unseen", state.phase === "answered" && !working && !state.stopped);
-    cancel.hidden = !working;
+    // Reading cannot be given up.
+    cancel.hidden = !working || (state.phase !== "busy" && state.progress === null);
     rest.hidden = working || !state.stopped || !session.hasUnfinished();
     progress.hidden = !working;
     if (state.progress === null) progress.removeAttribute("value");
