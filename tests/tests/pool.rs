@@ -6,7 +6,7 @@ use serde_json::{Value, json};
 /// Notes what workers are asked and what they tell, and can end one as a browser does that is short of memory.
 const LISTEN: &str = "
     const Own = Worker;
-    const heard = { named: {}, rows: {}, workers: [], ended: null, endAt: Infinity };
+    const heard = { named: {}, rows: {}, workers: [], ended: null, endAt: Infinity, roles: 0, early: null };
     globalThis.heard = heard;
     globalThis.Worker = class extends Own {
       constructor(...given) {
@@ -26,6 +26,8 @@ const LISTEN: &str = "
       }
       postMessage(message, ...more) {
         Object.assign(heard.named, message.named);
+        if (message.kind === 'roleOf') heard.roles++;
+        if (message.kind === 'open') heard.early ??= heard.roles;
         if (message.kind === 'fit') this.fits.set(message.id, message.key);
         super.postMessage(message, ...more);
       }
@@ -61,22 +63,30 @@ fn forget(page: &Page) {
     page.value("heard.rows = {}");
 }
 
-/// Three tables in one drop are three decompositions with the electrodes beside them; what is left out goes for all, a turned
-/// sign for one, and nothing is fitted that did not change.
+/// Six tables in one drop are six decompositions with the electrodes beside them, of which the first is asked about before all
+/// are recognised; what is left out goes for all, a turned sign for one, and nothing is fitted that did not change.
 fn tables_dropped_together_are_fitted_side_by_side(browser: Browser) {
     let page = listening(browser);
     let electrodes = example("watch_electrodes.tsv");
-    let (one, two, three) = (watch(1), watch(2), watch(3));
+    let tables: Vec<String> = (1..=6).map(watch).collect();
     page.drop_files(&[
-        DroppedFile { name: "sub-01_a.tsv", text: &one },
+        DroppedFile { name: "sub-01_a.tsv", text: &tables[0] },
         DroppedFile { name: "watch_electrodes.tsv", text: &electrodes },
-        DroppedFile { name: "sub-01_b.tsv", text: &two },
-        DroppedFile { name: "sub-02_a.tsv", text: &three },
+        DroppedFile { name: "sub-01_b.tsv", text: &tables[1] },
+        DroppedFile { name: "sub-02_a.tsv", text: &tables[2] },
+        DroppedFile { name: "sub-02_b.tsv", text: &tables[3] },
+        DroppedFile { name: "sub-03_a.tsv", text: &tables[4] },
+        DroppedFile { name: "sub-03_b.tsv", text: &tables[5] },
         DroppedFile { name: "holiday.pdf", text: "%PDF-1.7\n%\n1 0 obj\n" },
     ]);
+    let all = |out: Value| (1..=6).map(|times| json!([6 * times, 1, 1, out, []])).collect::<Value>();
+    let whole = all(json!([]));
     // What cannot be read keeps the others out of nothing, and is told by name.
     page.until("the refusal", |page| page.state() == "failed" && page.text("#failure-message").contains("holiday.pdf"));
-    page.until("all maps", |page| told(page) == json!([[6, 1, 1, [], []], [12, 1, 1, [], []], [18, 1, 1, [], []]]));
+    page.until("all maps", |page| told(page) == whole);
+    assert_eq!(page.texts(".decomposition-facts").len(), tables.len());
+    let early = page.value("return [heard.early, heard.roles]");
+    assert!(early[0].as_u64() < Some(7) && early[1] == 8, "asked about after {} of {} files", early[0], early[1]);
     page.click("#failure-dismiss");
     page.until("rest", Page::rests);
     assert!(page.text("#subject").contains("sub-01_a.tsv"), "{}", page.text("#subject"));
@@ -85,7 +95,7 @@ fn tables_dropped_together_are_fitted_side_by_side(browser: Browser) {
     forget(&page);
     let row = "[...document.querySelectorAll('#electrode-table tbody tr')].find((row) => row.innerText.trim().startsWith('Cz'))";
     page.value(&format!("{row}.querySelector('input').click()"));
-    let without = json!([[6, 1, 1, ["Cz"], []], [12, 1, 1, ["Cz"], []], [18, 1, 1, ["Cz"], []]]);
+    let without = all(json!(["Cz"]));
     page.until("all maps without Cz", |page| told(page) == without);
     page.until("rest", Page::rests);
 
@@ -97,7 +107,6 @@ fn tables_dropped_together_are_fitted_side_by_side(browser: Browser) {
     page.until("the map as it was", |page| page.rests() && told(page) == json!([[6, 1, 1, ["Cz"], []]]));
     forget(&page);
     page.click("#undo");
-    let whole = json!([[6, 1, 1, [], []], [12, 1, 1, [], []], [18, 1, 1, [], []]]);
     page.until("all maps with Cz", |page| page.rests() && told(page) == whole);
     assert_eq!(page.accessibility_findings(), Vec::<String>::new());
 }

@@ -36,7 +36,7 @@ export async function recognisedInNeed(given, recognise, hear) {
       found ||= isTable(input);
       // The first table of all is the first to be shown.
       const first = taken.findIndex((_, k) => !known.has(k) || isTable(known.get(k)));
-      if (isTable(known.get(first))) hear([...known].filter(([k, held]) => k === first || !isTable(held)).map(([, held]) => held));
+      if (isTable(known.get(first))) hear([...known].filter(([at, { role }]) => at === first || (role !== undefined && !isTable(known.get(at)))).map(([, held]) => held));
     }
   };
   // The worker that is asked by hand opens the first table meanwhile.

@@ -404,11 +404,11 @@ export function makeSession() {
       const engine = await started;
       const task = /** @type {const} */ ({ kind: "roleOf", name: input.name, content: input.content });
       try {
+        return { ...input, role: await (aside ? engine.askAside(task) : engine.ask(task)) };
+      } catch (error) {
+        const fault = /** @type {Fault} */ (error);
         // A helper that is lost says nothing about the file.
-        const role = aside ? await engine.askAside(task).catch(() => engine.ask(task)) : await engine.ask(task);
-        return { ...input, role };
-      } catch (fault) {
-        return { ...input, fault: /** @type {Fault} */ (fault) };
+        return aside && fault.code.startsWith("worker-") ? this.recognised(input) : { ...input, fault };
       }
     },
 
@@ -442,7 +442,7 @@ export function makeSession() {
      */
     async bring(given, take, hear = () => {}) {
       if (given.length >= MANY) store.write({ arriving: true });
-      const taken = await recognisedInNeed(given, this.recognised, hear);
+      const taken = await recognisedInNeed(given, (input, aside) => this.recognised(input, aside), hear);
       store.writeFirst({ arriving: false });
       const inputs = taken.flatMap((one) => (one.status === "fulfilled" ? [one.value] : []));
       const readable = inputs.filter(({ role }) => role !== undefined);
