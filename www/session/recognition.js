@@ -23,6 +23,8 @@ export async function recognisedInNeed(given, recognise, hear) {
   const small = [...taken.keys()].sort((a, b) => bytes(a) - bytes(b));
   const asked = new Set(taken.flatMap(({ status }, at) => (status === "rejected" ? [at] : [])));
   let found = false;
+  /** What is asked about until a table is found: no other table comes before it. @type {Promise<Input>[]} */
+  const beside = [];
   const next = () => (found ? [...taken.keys()] : small).find((at) => !asked.has(at));
   /** @param {boolean} aside */
   const lane = async (aside) => {
@@ -30,13 +32,16 @@ export async function recognisedInNeed(given, recognise, hear) {
       asked.add(at);
       const one = taken[at];
       if (one.status === "rejected") continue;
-      const input = await recognise(one.value, aside);
+      const answer = recognise(one.value, aside);
+      if (!found) beside.push(answer);
+      const input = await answer;
       known.set(at, input);
       taken[at] = { status: "fulfilled", value: input };
       found ||= isTable(input);
       // The first table of all is the first to be shown.
       const first = taken.findIndex((_, k) => !known.has(k) || isTable(known.get(k)));
       if (isTable(known.get(first))) hear([...known].filter(([at, { role }]) => at === first || (role !== undefined && !isTable(known.get(at)))).map(([, held]) => held));
+      if (found) await Promise.all(beside);
     }
   };
   // The worker that is asked by hand opens the first table meanwhile.
