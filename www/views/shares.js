@@ -321,6 +321,8 @@ export function showShares(session) {
     readout.textContent = rv === null ? word("shares.use") : `${shareAtText(rv)}: ${valuesAt(rv)}`;
     paint();
   }
+  // Where it is stands before the first curves do.
+  handle.setAttribute("aria-valuenow", enteredText(100 * session.read().threshold));
   point(null);
 
   field.addEventListener("change", () => {
