@@ -75,6 +75,13 @@ impl Page {
         assert!(self.visible("#answer"), "the answer is shown");
     }
 
+    /// Waits until the verdict of the map in view rests on all draws: nothing comes after it.
+    pub fn wait_for_verdict(&self) {
+        self.until("a verdict of all draws", |page| {
+            !page.visible("#drawing-line") && !["", "null"].contains(&&*page.attribute("#verdict-said", "data-verdict"))
+        });
+    }
+
     /// Waits for a failure, or panics.
     pub fn wait_for_failure(&self) {
         self.until("a failure", |page| page.state() == "failed");
@@ -113,7 +120,18 @@ impl Page {
 
     /// Visible text of an element.
     pub fn text(&self, selector: &str) -> String {
-        self.session.text(&self.find(selector)).unwrap()
+        self.on(selector, |element| self.session.text(element))
+    }
+
+    /// What is done with an element, once more where the page has meanwhile put another one in its place.
+    fn on<T>(&self, selector: &str, act: impl Fn(&Element) -> Result<T, String>) -> T {
+        for _ in 0..5 {
+            match act(&self.find(selector)) {
+                Err(why) if why.contains("stale element") => continue,
+                done => return done.unwrap_or_else(|why| panic!("{selector}: {why}")),
+            }
+        }
+        panic!("{selector} does not come to rest");
     }
 
     /// Whether an element takes room on the page.
@@ -194,7 +212,7 @@ impl Page {
     pub fn click(&self, selector: &str) {
         let script = "document.querySelector(arguments[0])?.scrollIntoView({ block: 'center', behavior: 'instant' })";
         self.ask(script, &[json!(selector)]);
-        self.session.click(&self.find(selector)).unwrap_or_else(|why| panic!("{selector}: {why}"));
+        self.on(selector, |element| self.session.click(element));
     }
 
     /// Moves the mouse to a place in CSS pixels from the middle of an element, which is brought into view before.

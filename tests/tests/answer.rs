@@ -297,7 +297,8 @@ fn views_paint_the_dipole_where_it_is(browser: Browser) {
         }
     }
 
-    // The turnable view.
+    // The turnable view; what is drawn into it comes late.
+    page.wait_for_verdict();
     let turned = || page.pixels("#view-turned").bytes;
     let start = turned();
     page.tab_to("#view-turned");
@@ -393,6 +394,7 @@ fn unit_sign_and_strength(browser: Browser) {
 /// Every number has a unit or says it has none, and every quantity a line that explains it.
 fn every_number_and_term_is_explained(browser: Browser) {
     let page = example_shown(browser, "lamp");
+    page.wait_for_verdict();
     let rows =
         page.value("return [...document.querySelectorAll('#numbers tbody tr')].map((row) => row.innerText.trim())");
     let rows: Vec<&str> = rows.as_array().unwrap().iter().map(|row| row.as_str().unwrap()).collect();

@@ -14,9 +14,7 @@ const SHARE: f64 = 0.06;
 fn shown(page: &Page, button: &str, name: &str) -> Vec<u8> {
     page.click(button);
     page.until(name, |page| page.state() == "answered" && page.report()["maps"][0]["name"] == name);
-    page.until("a verdict of all draws", |page| {
-        !page.visible("#drawing-line") && !["", "null"].contains(&&*page.attribute("#verdict-said", "data-verdict"))
-    });
+    page.wait_for_verdict();
     page.value("document.activeElement?.blur(); scrollTo(0, 0)");
     page.session().mouse_away().unwrap();
     page.settle();

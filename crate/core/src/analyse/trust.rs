@@ -197,7 +197,7 @@ impl Study {
         self.check(&range)?;
         let lacking = BARS.into_iter().find(|kind| self.reference(*kind).is_none());
         if let Some(kind) = lacking {
-            return Err(Finding::new(Code::PopulationsLacking).with("kind", format!("{kind:?}")).into());
+            return Err(Finding::new(Code::PopulationsLacking).with("kind", kind.name()).into());
         }
         let outcomes = self.outcomes(range);
         Ok(outcomes.iter().map(|map| Some(self.verdict(map.as_ref().ok()?)?.word)).collect())
@@ -299,9 +299,7 @@ impl Study {
             noise_only: noise.0,
             residual_structure: structure.map(Into::into),
             repeats: self.repeats(),
-            reaches_boundary: axes
-                .iter()
-                .any(|(length, axis)| [1.0, -1.0].iter().any(|s| (fit.position + *axis * (s * length)).norm() > reach)),
+            reaches_boundary: reaches(&ellipsoid, reach),
         };
         Some(Region { report, cloud, ellipsoid: Some((&ellipsoid).into()), noise_only: noise.1 })
     }
@@ -343,7 +341,7 @@ impl Study {
             covariance_mm2: covariance.map(|covariance| self.table_covariance(&covariance)),
             profile_limit: rv + excess,
             profile_volume_ml: profile.as_ref().map_or(0.0, |p| p.volume * radius * radius * radius * 1e-3),
-            reaches_boundary: profile.is_some_and(|profile| profile.reaches_boundary),
+            reaches_boundary: fit.at_boundary || profile.is_some_and(|profile| profile.reaches_boundary),
         };
         (report, drawn)
     }
@@ -372,6 +370,8 @@ impl Study {
     fn repeats(&self) -> Option<Repeats> {
         /// Of fewer no scatter is told.
         const FEWEST: usize = 3;
+        /// More are no clearer in a drawing.
+        const DRAWN: usize = 400;
         let all = || {
             if self.tables.understood.columns_are != ColumnsAre::Repeats {
                 return None;
@@ -389,14 +389,15 @@ impl Study {
                 mean_mm: self.placement.table(middle * radius),
                 rms_mm: mean(&off.iter().map(|d| d * d).collect::<Vec<_>>()).sqrt(),
                 max_mm: off.iter().fold(0.0, |most, d| d.max(most)),
-                points,
+                points: points.into_iter().take(DRAWN).collect(),
             })
         };
         self.simulated.repeats.get_or_init(all).clone()
     }
 
     fn rule(&self, draws: usize) -> String {
-        rule(&self.head(), self.fitter.field().count(), &self.settings, draws)
+        let HeadErrors { skull_ratio, sphere, .. } = self.head_errors();
+        rule(&self.head(), self.fitter.field().count(), &self.settings, skull_ratio, sphere.is_some(), draws)
     }
 
     fn source_rule(&self) -> SourceRule {
@@ -447,6 +448,18 @@ impl Study {
         };
         Some([((variance(0) + variance(1) + variance(2)) / 3.0).sqrt(), variance(3).sqrt()])
     }
+}
+
+/// Whether an ellipsoid reaches beyond a sphere about the origin: at the ends of its axes, or where it reaches farthest along
+/// the line from the origin to its centre.
+fn reaches(ellipsoid: &Ellipsoid, reach: f64) -> bool {
+    let centre = ellipsoid.centre;
+    let ends = ellipsoid.axes().into_iter().flat_map(|(length, axis)| [axis * length, axis * -length]);
+    let outwards = centre.unit().map(|n| {
+        let c = ellipsoid.covariance.apply(n);
+        c * (ellipsoid.scale / n.dot(c).sqrt())
+    });
+    ends.chain(outwards).any(|end| (centre + end).norm() > reach)
 }
 
 /// The populations that verdicts depend on.

@@ -43,6 +43,10 @@ impl Reference {
                 let lower = |draw: &&Draw| draw.residual_variance < residual_variance;
                 return self.draws.iter().filter(near).filter(lower).count() as f64 / count as f64;
             }
+            // Such a window holds every eccentricity that is a number.
+            if window > 2.0 {
+                return self.share_lower(residual_variance);
+            }
             window += WINDOW;
         }
     }

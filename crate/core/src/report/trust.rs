@@ -1,6 +1,6 @@
 //! How far a fit may be trusted: as it stands in a report, and in words.
 
-use super::number::{given, hundredths, millimetres, percent, significant, tenths};
+use super::number::{given, hundredths, millimetres, percent, percent_left, significant, tenths};
 use super::sheet::{Row, Written, row};
 use super::{FittedMap, HeadReport, Settings};
 use crate::assess::{Hint, Reason, ReasonCode, Reference, Word};
@@ -8,6 +8,7 @@ use crate::map::MapUnit;
 use crate::math::{Autocorrelation, Ellipsoid, Vec3};
 use crate::simulate::{Kind, Orientation};
 use serde::Serialize;
+use std::sync::Arc;
 
 /// Where the dipole may be when head, electrodes and map are not exact.
 #[derive(Clone, Debug, PartialEq, Serialize)]
@@ -52,7 +53,7 @@ pub struct CauseReport {
     /// What was drawn: root-mean-square distance in mm; least and largest ratio; standard errors of centre and radius in
     /// mm; standard deviation in the unit of the map.
     pub size: Vec<f64>,
-    /// Root-mean-square distance of refits under this cause alone from the fitted position, per axis.
+    /// Root mean square, per axis, of the shift of refits under this cause alone from the fitted position.
     pub sd_mm: f64,
 }
 
@@ -103,9 +104,9 @@ pub struct Repeats {
     pub rms_mm: f64,
     /// Largest distance from it.
     pub max_mm: f64,
-    /// For drawings: scalp radii, canonical.
+    /// For drawings: the first few hundred, in scalp radii, canonical.
     #[serde(skip)]
-    pub points: Vec<Vec3>,
+    pub points: Arc<[Vec3]>,
 }
 
 /// A reference population.
@@ -276,7 +277,7 @@ fn verdict_text(word: Word) -> &'static str {
 }
 
 fn reason(reason: &Reason) -> ReasonReport {
-    let share = |share: f64| format!("{} %", percent(share));
+    let share = |share: f64| format!("{} %", near_all(share));
     let (value, limit) = (reason.value, reason.limit.unwrap_or(f64::NAN));
     let among = |what: &str, how: &str| match value > 0.0 {
         true => {
@@ -630,8 +631,13 @@ fn repeats(found: &Repeats) -> TrustRepeats {
                 "Largest distance from their mean position.",
             ),
         ],
-        points: found.points.clone(),
+        points: found.points.to_vec(),
     }
+}
+
+/// A share in percent, with as many decimals as tell it from all.
+fn near_all(share: f64) -> String {
+    if share > 0.99 { percent_left(1.0 - share) } else { percent(share) }
 }
 
 /// How a kind is called.
@@ -659,9 +665,9 @@ fn among_words(map: &FittedMap, population: &PopulationReport, among: &Among) ->
     let share = among.share_lower_rv;
     let stands = match share {
         s if s <= 0.0 => format!("lower than with all {} {many} simulated here", population.draws),
-        s if s < 0.05 => format!("lower than with {} % of {many} simulated here", percent(1.0 - s)),
+        s if s < 0.05 => format!("lower than with {} % of {many} simulated here", near_all(1.0 - s)),
         s if s <= 0.95 => format!("usual for {many} simulated here; {} % of them leave less over", percent(s)),
-        s if s < 1.0 => format!("higher than with {} % of {many} simulated here", percent(s)),
+        s if s < 1.0 => format!("higher than with {} % of {many} simulated here", near_all(s)),
         _ => format!("higher than with all {} {many} simulated here", population.draws),
     };
     let at = &population.rv_percentiles;
@@ -679,8 +685,16 @@ fn among_words(map: &FittedMap, population: &PopulationReport, among: &Among) ->
     }
 }
 
-/// Head, electrodes, depth, number and orientation of the simulated sources: stands beside every figure.
-pub fn rule(head: &HeadReport, electrodes: usize, settings: &Settings, draws: usize) -> String {
+/// Head, electrodes, depth, number and orientation of the simulated sources: stands beside every figure. `skull` is what is
+/// drawn of the skull, `sphere` whether the sphere is.
+pub fn rule(
+    head: &HeadReport,
+    electrodes: usize,
+    settings: &Settings,
+    skull: Option<[f64; 2]>,
+    sphere: bool,
+    draws: usize,
+) -> String {
     let shells: Vec<String> =
         head.shells.iter().map(|s| format!("{} {}", s.tissue, given(s.conductivity_s_per_m))).collect();
     let (sources, errors) = (&settings.sources, &settings.errors);
@@ -689,16 +703,21 @@ pub fn rule(head: &HeadReport, electrodes: usize, settings: &Settings, draws: us
         Orientation::Radial => "pointing outwards or inwards",
         Orientation::Tangential => "pointing along the sphere",
     };
-    let skull = match errors.skull_ratio {
+    let skull = match skull {
         Some([least, most]) => format!("brain conducting {} to {} times as well as skull", given(least), given(most)),
         None => "conductivities as modelled".into(),
+    };
+    let sphere = match (sphere, errors.sphere) {
+        (false, _) => "sphere as modelled".into(),
+        (true, 1.0) => "sphere off by the standard error of its fit".into(),
+        (true, times) => format!("sphere off by {} times the standard error of its fit", given(times)),
     };
     let noise = match errors.background_sources {
         0 => "independent noise".into(),
         count => format!("noise of {count} weak sources"),
     };
     format!(
-        "{electrodes} electrodes on a sphere of {} mm ({}; S/m). Sources even in the volume of the brain up to eccentricity {}, above z = {} {} {} y in brain radii, {pointing}, of equal moments. Single dipoles: electrodes {} mm off, {skull}, {} % {noise}. {draws} maps of each kind, seed {}.",
+        "{electrodes} electrodes on a sphere of {} mm ({}; S/m). Sources even in the volume of the brain up to eccentricity {}, above z = {} {} {} y in brain radii, {pointing}, of equal moments. Single dipoles: electrodes {} mm off, {skull}, {sphere}, {} % {noise}. {draws} maps of each kind, seed {}.",
         tenths(head.radius_mm),
         shells.join(", "),
         given(sources.max_eccentricity),

@@ -35,6 +35,9 @@ impl Cause {
     pub const ALL: [Self; 3] = [Self::Electrodes, Self::Skull, Self::Sphere];
 }
 
+/// Farthest that centre and radius of a sphere are drawn from those of the model, in its radii.
+const FARTHEST_OFF: f64 = 0.3;
+
 /// A head that differs from the model.
 #[derive(Clone, Debug)]
 pub struct DrawnHead {
@@ -70,9 +73,15 @@ impl HeadErrors {
         let (offset, radius) = match &self.sphere {
             Some((sd, normal)) if drawn(Cause::Sphere) => {
                 let mut stream = Stream::new(seed, part::SPHERE, index);
-                let normals = [0; 4].map(|_| sd * stream.normal());
-                let off = normal.spread(&normals);
-                (Vec3::new(off[0], off[1], off[2]), 1.0 + off[3])
+                let mut drawn = || {
+                    let off = normal.spread(&[0; 4].map(|_| sd * stream.normal()));
+                    (Vec3::new(off[0], off[1], off[2]), 1.0 + off[3])
+                };
+                // Few electrodes in a ring may leave the sphere so open that no head would be like a draw of it.
+                let usual = |(offset, radius): &(Vec3, f64)| {
+                    offset.norm() <= FARTHEST_OFF && (radius - 1.0).abs() <= FARTHEST_OFF
+                };
+                (0..100).map(|_| drawn()).find(usual).unwrap_or((Vec3::ZERO, 1.0))
             }
             _ => (Vec3::ZERO, 1.0),
         };

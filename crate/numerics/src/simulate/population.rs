@@ -45,6 +45,18 @@ impl Kind {
     pub const ALL: [Self; 6] =
         [Self::Noise, Self::OneDipole, Self::TwoDipoles, Self::FiveDipoles, Self::TwentyDipoles, Self::HundredDipoles];
 
+    /// As settings and reports write it.
+    pub fn name(self) -> &'static str {
+        match self {
+            Self::Noise => "noise",
+            Self::OneDipole => "one-dipole",
+            Self::TwoDipoles => "two-dipoles",
+            Self::FiveDipoles => "five-dipoles",
+            Self::TwentyDipoles => "twenty-dipoles",
+            Self::HundredDipoles => "hundred-dipoles",
+        }
+    }
+
     /// Its place in [`Self::ALL`].
     pub fn place(self) -> usize {
         Self::ALL.iter().position(|kind| *kind == self).unwrap_or(0)
