@@ -173,6 +173,19 @@ fn verdicts_move_with_their_limits_and_say_why() {
     }
 }
 
+/// In the invented map "salt" the electrode P6 is 5 µV too high; "lamp" is as clean as it is focal.
+#[test]
+fn an_electrode_that_holds_what_is_left_over_is_hinted_at() {
+    let study = watch(json!({ "sources": { "draws": 1000 } }));
+    let hinted = |index: usize| {
+        let hints = verdict(&study, index).hints;
+        hints
+            .iter()
+            .any(|hint| hint.text.starts_with("One electrode has") && hint.basis == "common practice, no source")
+    };
+    assert!(hinted(4) && !hinted(0));
+}
+
 /// What would be refused in a paper or a record does not appear.
 #[test]
 fn no_forbidden_word_is_said() {

@@ -164,6 +164,10 @@ fn the_table_is_sorted_copied_and_read_back() {
     let page = watch(Browser::Chromium);
     let report = page.report();
     assert!(!page.exists("#table-panel[open]"), "folded at first");
+    page.until("verdicts, which are a column", |page| {
+        page.value("return document.querySelectorAll('#ledger .ledger-verdict:not([data-verdict=\"\"])').length")
+            == json!(6)
+    });
     page.click("#table-panel summary");
     page.until("the rows", |page| page.texts("#all-numbers tbody tr").len() == 7);
     page.click("#all-numbers [data-code='rv'] button");

@@ -80,6 +80,8 @@ fn no_findings_in_any_surroundings(browser: Browser) {
 /// The focus can be seen: each control that the keyboard reaches changes its look, in the light and with forced colours.
 fn the_focus_is_visible(browser: Browser) {
     let page = answered(browser);
+    // What is written anew takes the focus with it.
+    page.wait_for_verdict();
     for surroundings in [PLAIN, Surroundings { forced_colours: true, ..PLAIN }] {
         page.surround(surroundings);
         page.focus("#main");

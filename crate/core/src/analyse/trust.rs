@@ -232,7 +232,12 @@ impl Study {
             unfinished,
         };
         let (word, reasons) = bar.judge(&judged);
-        Some(VerdictReport::new(word, &reasons, &hints(position, dipole.radial_share, &map.measured)))
+        Some(VerdictReport::new(
+            word,
+            &reasons,
+            &hints(position, dipole.radial_share, &map.residual, map.residual_variance),
+            self.settings.sources.noise,
+        ))
     }
 
     /// Values of a map and its fit, without a turned sign.

@@ -218,8 +218,8 @@ pub struct HintReport {
 }
 
 impl VerdictReport {
-    /// In words.
-    pub fn new(word: Word, reasons: &[Reason], hints: &[Hint]) -> Self {
+    /// In words; `noise` is the share of noise in the power of simulated single dipoles.
+    pub fn new(word: Word, reasons: &[Reason], hints: &[Hint], noise: f64) -> Self {
         Self {
             word,
             text: match reasons.iter().any(|reason| reason.code == ReasonCode::SeldomOneDipole)
@@ -228,7 +228,7 @@ impl VerdictReport {
                 true => SELDOM.into(),
                 false => verdict_text(word).into(),
             },
-            reasons: reasons.iter().map(reason).collect(),
+            reasons: reasons.iter().map(|one| reason(one, noise)).collect(),
             hints: hints
                 .iter()
                 .map(|&code| HintReport { code, text: hint_text(code), basis: "common practice, no source" })
@@ -276,7 +276,7 @@ fn verdict_text(word: Word) -> &'static str {
     }
 }
 
-fn reason(reason: &Reason) -> ReasonReport {
+fn reason(reason: &Reason, noise: f64) -> ReasonReport {
     let share = |share: f64| format!("{} %", near_all(share));
     let (value, limit) = (reason.value, reason.limit.unwrap_or(f64::NAN));
     let among = |what: &str, how: &str| match value > 0.0 {
@@ -299,8 +299,11 @@ fn reason(reason: &Reason) -> ReasonReport {
             format!("The position lies {} brain radii below the floor of the modelled brain.", hundredths(-value))
         }
         ReasonCode::LikeOneDipole => among(single, "within"),
-        ReasonCode::SeldomOneDipole => among(single, "over"),
-        ReasonCode::UnlikeOneDipole => among(single, "over"),
+        ReasonCode::SeldomOneDipole | ReasonCode::UnlikeOneDipole => format!(
+            "{} They are drawn with {} % of noise; of a noisier map more is left over, whatever its source.",
+            among(single, "over"),
+            percent(noise)
+        ),
         ReasonCode::RareInTwo => among("pairs of dipoles", "within"),
         ReasonCode::UsualInTwo => among("pairs of dipoles", "over"),
         ReasonCode::RareInHundred => among("mixtures of a hundred dipoles", "within"),
@@ -321,7 +324,7 @@ fn hint_text(hint: Hint) -> &'static str {
         Hint::NearTemple => "Low at the side and near the surface: the muscles of the temples make such maps.",
         Hint::NearNeck => "Low at the back: the muscles of the neck make such maps.",
         Hint::ShallowRadial => "Very shallow and radial: muscle or a single electrode can make such maps.",
-        Hint::OneChannel => "One electrode stands out: look at its contact before the map.",
+        Hint::OneChannel => "One electrode has much of what is left over: look at its contact before the map.",
     }
 }
 
@@ -485,11 +488,17 @@ impl Trust {
             "The region is as wide as the errors that it is drawn from; it holds nothing about sources of another kind than one dipole.",
         );
         let [a, b, c] = region.semi_axes_mm.map(millimetres);
+        let doubt = match verdict.as_ref().map(|verdict| verdict.word) {
+            Some(Word::LoneElectrode | Word::Edge | Word::NotDipolar) => {
+                "The verdict speaks against one dipole: what follows only says how its best fit scatters. "
+            }
+            _ => "",
+        };
         Self {
             verdict: verdict.map(word),
             region: TrustRegion {
                 sentence: format!(
-                    "When head, electrodes and map are off as assumed here, 95 % of refits lie in an ellipsoid of {} ml, {a} × {b} × {c} mm to each side of the position. {PUBLISHED}",
+                    "{doubt}When head, electrodes and map are off as assumed here, 95 % of refits lie in an ellipsoid of {} ml, {a} × {b} × {c} mm to each side of the position. {PUBLISHED}",
                     significant(region.volume_ml, 2)
                 ),
                 rows: region_rows(region, Written::of(unit)),
@@ -554,7 +563,11 @@ fn region_rows(region: &RegionReport, unit: Written) -> Vec<Row> {
         ),
         row(
             "noise_sd",
-            if noise.noise_from == "residual" { "Noise, from the residual" } else { "Noise, as given" },
+            if noise.noise_from == "residual" {
+                "Independent noise, from the residual"
+            } else {
+                "Independent noise, as given"
+            },
             significant(unit.factor * noise.noise_sd, 2),
             unit.name,
             "Standard deviation at each electrode that the row above assumes.",
@@ -581,7 +594,7 @@ fn causes(region: &RegionReport, unit: Written) -> Vec<TrustCause> {
             ("electrodes", [mm]) => ("Electrodes misplaced", format!("{mm} mm")),
             ("skull", [least, most]) => ("Conductivity of the skull", format!("brain {least} to {most} times")),
             ("sphere", [centre, radius]) => ("Sphere", format!("centre {centre} mm, radius {radius} mm")),
-            ("noise", [sd]) => ("Noise", format!("{sd} {}", unit.name)),
+            ("noise", [sd]) => ("Noise as drawn for the refits", format!("{sd} {}", unit.name)),
             _ => ("", String::new()),
         };
         TrustCause { cause: cause.cause, label, size, sd: tenths(cause.sd_mm) }

@@ -4,7 +4,7 @@ use crate::math::{Double, Lanes, Vec3};
 use crate::shells::Shells;
 
 /// The series of a head that is drawn for one simulation only, where an approximation by images would cost more than it
-/// saves: the lead field alone, cut off where the power of the distance falls below [`CUT`].
+/// saves: the lead field alone, cut off where the power of the distance falls below 10⁻⁷.
 #[derive(Clone, Debug)]
 pub struct CutSeries {
     /// gₙ for n = 1, 2, …, with the factors of the recurrence of Hₙ.

@@ -3,8 +3,8 @@ use super::{Vec3, dot, normal_above};
 /// Moran's I of the residuals of a regression: whether neighbours are left over alike.
 ///
 /// I = (N / S₀) eᵀWe / eᵀe with W 1 for neighbours, else 0, and S₀ = ΣW. For independent normal errors behind a projection
-/// M = 1 − QQᵀ of rank N − k, E[I] = (N / S₀) tr(MW) / (N − k) and
-/// E[I²] = (N / S₀)² [2 tr(MWMW) + tr(MW)²] / ((N − k)(N − k + 2))
+/// M = 1 − QQᵀ of rank N − k the mean of I is (N / S₀) tr(MW) / (N − k), that of its square
+/// (N / S₀)² (2 tr(MWMW) + tr(MW)²) / ((N − k)(N − k + 2))
 /// (Moran 1950, Biometrika 37:17–23; Cliff & Ord 1981, Spatial Processes, §8.3; W is symmetric here).
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Autocorrelation {
