@@ -165,6 +165,8 @@ interface Trust {
 /** Two numbers for each draw: residual variance; eccentricity, negative at the boundary. */
 interface Populations {
   key: string;
+  /** Key of the answer whose they are. */
+  answer: number;
   kinds: Record<PopulationKind, Float64Array>;
   done: number;
   total: number;

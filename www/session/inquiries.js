@@ -138,7 +138,8 @@ export function makeInquiries(store, pool, fail, fitting) {
       const { answer, populations: drawn } = store.read();
       if (answer === null) return null;
       // Without all of them a report would be another one each time.
-      const populations = drawn?.state === "done" ? { name: `${drawn.key} ${drawn.kinds.noise.length / 2}`, kinds: drawn.kinds } : null;
+      const whole = drawn?.state === "done" && drawn.answer === answer.key;
+      const populations = drawn && whole ? { name: `${drawn.key} ${drawn.kinds.noise.length / 2}`, kinds: drawn.kinds } : null;
       return inTime((engine, take) => engine.ask({ kind: "report", key: answer.key, populations }, take));
     },
   };

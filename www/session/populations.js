@@ -84,7 +84,7 @@ export function makePopulations(store, pool, fail, fitting) {
     const done = Object.values(counts).reduce((sum, count) => sum + count, 0);
     const total = size * POPULATION_KINDS.length;
     const state = done === total ? "done" : stopped ? "stopped" : drawing ? "drawing" : "waiting";
-    store.write({ populations: { key, kinds: drawnKinds(held), done, total, state } });
+    store.write({ populations: { key, answer: study, kinds: drawnKinds(held), done, total, state } });
   }
 
   function showSoon() {
@@ -177,6 +177,8 @@ export function makePopulations(store, pool, fail, fitting) {
     const verdicts = await (count > BRIEF_MAPS ? engine.askAside(task) : engine.ask(task));
     const { answer } = store.read();
     if (answer?.key === key) store.write({ answer: { ...answer, verdicts } });
+    // Of a decomposition that was left meanwhile they are asked again.
+    else if (asked.verdicts === key) asked.verdicts = -1;
   }
 
   /** Does what is to be done next. */
@@ -196,10 +198,10 @@ export function makePopulations(store, pool, fail, fitting) {
     }
     /** @param {any} fault */
     const refused = (fault) => {
+      if (fault.code === "given-up" && asked.verdicts === answer.key) asked.verdicts = -1;
       if (store.read().answer?.key !== answer.key) return;
       // What was given up with the fits is asked again.
       if (fault.code === "given-up") {
-        asked.verdicts = -1;
         if (held === null) study = -1;
         lookSoon();
       } else {
@@ -215,7 +217,9 @@ export function makePopulations(store, pool, fail, fitting) {
       if (quiet >= QUIET_MS) draw(engine, held);
       else wakeIn(QUIET_MS - quiet);
     }
-    if (level(held) === 2 && answer.verdicts === null) askVerdicts(engine, answer).catch(refused);
+    // Verdicts of maps whose fits were given up would fit them after all.
+    const whole = answer.fitted === answer.count;
+    if (level(held) === 2 && whole && answer.verdicts === null) askVerdicts(engine, answer).catch(refused);
   }
 
   /** After what is being done now has been asked: sheets come first. */

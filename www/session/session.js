@@ -628,6 +628,7 @@ export function makeSession() {
     /** Gives up what the engine is at. */
     cancel() {
       fitting.cancel();
+      populations.stopPopulations();
       store.write({ phase: fitting.restingPhase(), progress: null, stopped: true });
     },
 
@@ -637,6 +638,7 @@ export function makeSession() {
     /** Goes on with what was given up. */
     fitRest() {
       store.write({ stopped: false });
+      populations.drawPopulations();
       fitting.fitRest();
     },
 

@@ -34,7 +34,7 @@ export const TRUST_WORDS = {
   "region.causes": "What each cause alone would do",
   "region.cause": "Cause",
   "region.size": "Size",
-  "region.sd": "Standard deviation of the position, mm",
+  "region.sd": "Shift of the position per axis (root mean square), mm",
 
   populations: "Reference populations",
   "populations.none": "None are drawn yet.",
