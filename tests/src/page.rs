@@ -381,9 +381,14 @@ impl Page {
     fn downloaded(&self, ask: impl Fn()) -> Value {
         let file = self.session.downloads().join("inward-report.json");
         let _ = std::fs::remove_file(&file);
-        ask();
         let start = Instant::now();
+        let mut asked = None::<Instant>;
         loop {
+            // One that was asked for while the answer changed is given up, and asked for once more.
+            if asked.is_none_or(|at| at.elapsed() > Duration::from_secs(8)) {
+                ask();
+                asked = Some(Instant::now());
+            }
             // Half a file is not JSON yet.
             if let Some(report) = std::fs::read_to_string(&file).ok().and_then(|text| serde_json::from_str(&text).ok())
             {

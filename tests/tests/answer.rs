@@ -423,12 +423,16 @@ fn every_number_and_term_is_explained(browser: Browser) {
     assert!(terms >= 3, "{terms} explained words");
     let mut said = std::collections::BTreeSet::new();
     for k in 0..terms {
-        page.ask(
-            "[...document.querySelectorAll('.term')].filter((e) => e.getClientRects().length)[arguments[0]].focus()",
-            &[json!(k)],
-        );
-        page.press("\u{E007}");
-        page.until("the explanation", |page| page.visible("#term-note"));
+        // What is written anew between focus and key takes the focus with it.
+        page.until("the explanation", |page| {
+            page.ask(
+                "[...document.querySelectorAll('.term')].filter((e) => e.getClientRects().length)[arguments[0]].focus()",
+                &[json!(k)],
+            );
+            page.press("\u{E007}");
+            page.settle();
+            page.visible("#term-note")
+        });
         let note = page.text("#term-note");
         assert!(note.len() > 25 && note.trim_end().ends_with('.'), "{note:?}");
         said.insert(note);
