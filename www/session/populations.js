@@ -141,6 +141,8 @@ export function makePopulations(store, pool, fail, fitting) {
     held = null;
     drawing = false;
     engine.stopDrawing();
+    // Those of another head do not stand beside this answer.
+    if (store.read().populations !== null) store.write({ populations: null });
     const { key, size } = await engine.ask({ kind: "population-key", key: answer.key });
     if (study !== answer.key) return;
     held = heldOf(key, size);
@@ -174,11 +176,19 @@ export function makePopulations(store, pool, fail, fitting) {
     if (held === null || asked.verdicts === key) return;
     asked.verdicts = key;
     const task = /** @type {WorkerTask} */ ({ kind: "verdicts", key, populations: given(held) });
-    const verdicts = await (count > BRIEF_MAPS ? engine.askAside(task) : engine.ask(task));
-    const { answer } = store.read();
-    if (answer?.key === key) store.write({ answer: { ...answer, verdicts } });
-    // Of a decomposition that was left meanwhile they are asked again.
-    else if (asked.verdicts === key) asked.verdicts = -1;
+    /** @param {Fault} fault a helper that is lost says nothing about the maps */
+    const again = (fault) => {
+      if (!fault.code.startsWith("worker-")) throw fault;
+      return engine.ask(task);
+    };
+    try {
+      const verdicts = await (count > BRIEF_MAPS ? engine.askAside(task).catch(again) : engine.ask(task));
+      const { answer } = store.read();
+      if (answer?.key === key) store.write({ answer: { ...answer, verdicts } });
+    } finally {
+      // Of a decomposition that was left meanwhile they are asked again.
+      if (store.read().answer?.key !== key && asked.verdicts === key) asked.verdicts = -1;
+    }
   }
 
   /** Does what is to be done next. */

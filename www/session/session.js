@@ -442,8 +442,9 @@ export function makeSession() {
      */
     async bring(given, take, hear = () => {}) {
       if (given.length >= MANY) store.write({ arriving: true });
-      const taken = await recognisedInNeed(given, (input, aside) => this.recognised(input, aside), hear);
-      store.writeFirst({ arriving: false });
+      const taken = await recognisedInNeed(given, (input, aside) => this.recognised(input, aside), hear).finally(() =>
+        store.writeFirst({ arriving: false }),
+      );
       const inputs = taken.flatMap((one) => (one.status === "fulfilled" ? [one.value] : []));
       const readable = inputs.filter(({ role }) => role !== undefined);
       const spoilt = inputs.filter(({ role }) => role === undefined);

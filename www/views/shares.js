@@ -60,8 +60,8 @@ export function showShares(session) {
   let offered = false;
 
   function behindNow() {
-    const { populations } = session.read();
-    if (!behind.checked || populations === null) return [];
+    const { populations, answer } = session.read();
+    if (!behind.checked || populations === null || populations.answer !== answer?.key) return [];
     if (simulated.of !== populations) simulated = { of: populations, lines: populationLines(populations) };
     return simulated.lines;
   }
@@ -376,13 +376,19 @@ export function showShares(session) {
     return height;
   };
   const title = () => shareTitle(nounOf(session.read()));
-  figureTools(session, need("share-tools", HTMLElement), () => ({
-    name: "inward-near-dipolar-share",
-    title: title(),
-    description: `${shareAtText(session.read().threshold)}: ${valuesAt(session.read().threshold)}.`,
-    width: SAVED.shares,
-    paint: behindNow().length > 0 ? withRule(session.read().answer?.trust?.rule ?? "", paintSaved) : paintSaved,
-  }));
+  figureTools(session, need("share-tools", HTMLElement), () => {
+    const simulatedToo = behindNow().length > 0;
+    const rule = session.read().answer?.trust?.rule;
+    // Populations go nowhere without the rule of their sources.
+    if (simulatedToo && rule === undefined) return null;
+    return {
+      name: "inward-near-dipolar-share",
+      title: title(),
+      description: `${shareAtText(session.read().threshold)}: ${valuesAt(session.read().threshold)}.`,
+      width: SAVED.shares,
+      paint: simulatedToo && rule !== undefined ? withRule(rule, paintSaved) : paintSaved,
+    };
+  });
   figureTools(session, need("information-tools", HTMLElement), () => ({
     name: "inward-information",
     title: word("information"),
