@@ -2,6 +2,7 @@
 import assert from "node:assert/strict";
 import { test } from "node:test";
 import { makeClient } from "../../www/engine/pool/client.js";
+import { makeSilence, SILENCE_MS } from "../../www/engine/pool/faults.js";
 import { makePool } from "../../www/engine/pool/pool.js";
 
 const LARGE = new Uint8Array(16 * 2 ** 20 + 1);
@@ -211,10 +212,12 @@ test("cancelling ends the work, and the next goes on", async () => {
 
 const KINDS = ["noise", "one-dipole", "two-dipoles", "five-dipoles", "twenty-dipoles", "hundred-dipoles"];
 
-/** Draw k of a kind is the number k beside the kind's; `spoil` may end a piece otherwise, and fits take turns of a millisecond. */
-function drawers(size, helpers, spoil = () => undefined) {
+/** Draw k of a kind is the number k beside the kind's; `spoil` may end a piece otherwise, and fits take turns of a millisecond; `most` workers can be started. */
+function drawers(size, helpers, spoil = () => undefined, most = Infinity) {
   const asked = [];
+  let started = 0;
   const start = () => {
+    if (started++ >= most) throw new Error("no more workers");
     const listeners = {};
     const worker = {
       ended: false,
@@ -230,6 +233,7 @@ function drawers(size, helpers, spoil = () => undefined) {
           }
           return worker.say({ id, value: null });
         }
+        if (kind === "slow") return setTimeout(() => worker.say({ id, value: null }), 50);
         if (kind !== "population") return;
         asked.push({ key, population, first, last });
         await new Promise((resume) => setTimeout(resume, (last - first) / 10));
@@ -310,4 +314,60 @@ test("stopped draws tell nothing any more, another study's take their place, and
   const third = pool.draw(wanted, from());
   pool.forget(wanted.key);
   await assert.rejects(third, { code: "given-up" });
+});
+
+test("a helper that cannot be started leaves draws and questions to the others", async () => {
+  const { asked, wanted, from, complete, pool } = drawers(1000, 2, () => undefined, 1);
+  await pool.draw(wanted, from());
+  complete();
+  assert.equal(asked.reduce((sum, { first, last }) => sum + last - first, 0), 6000);
+  let started = 0;
+  const lone = makePool({}, () => {
+    if (started++ > 0) throw new Error("no more workers");
+    const { workers, client: one } = client();
+    one.ask({ kind: "program" });
+    return workers[0];
+  }, 2);
+  await lone.ask({ kind: "program" });
+  assert.equal(await lone.askAside({ kind: "verdicts", key: 1 }), "verdicts");
+});
+
+test("a worker that has a question to answer is given no draws until it has", async () => {
+  const { pool, asked, wanted, from, complete } = drawers(1000, 1, () => undefined, 1);
+  const question = pool.ask({ kind: "slow", key: wanted.key });
+  const drawn = pool.draw(wanted, from());
+  await new Promise((resume) => setTimeout(resume, 20));
+  assert.equal(asked.length, 0);
+  await question;
+  await drawn;
+  complete();
+});
+
+test("a worker is taken for lost when it is silent, not while it has something else to do or has just had", (context) => {
+  context.mock.timers.enable({ apis: ["setTimeout"] });
+  let now = 0;
+  context.mock.method(performance, "now", () => now);
+  const pass = (milliseconds) => {
+    now += milliseconds;
+    context.mock.timers.tick(milliseconds);
+  };
+  const worker = { waiting: 1, heard: 0, lost: 0, waitsFor: () => worker.waiting, heardAt: () => worker.heard, abandon: () => worker.lost++ };
+  const silence = makeSilence(worker);
+  pass(2 * SILENCE_MS);
+  assert.equal(worker.lost, 0, "not at work yet");
+  silence.listen();
+  worker.waiting = 2;
+  pass(SILENCE_MS);
+  pass(SILENCE_MS - 1000);
+  [worker.waiting, worker.heard] = [1, now];
+  pass(1000);
+  assert.equal(worker.lost, 0);
+  pass(SILENCE_MS - 1001);
+  assert.equal(worker.lost, 0);
+  pass(1);
+  assert.equal(worker.lost, 1);
+  silence.listen();
+  silence.end();
+  pass(2 * SILENCE_MS);
+  assert.equal(worker.lost, 1);
 });

@@ -19,7 +19,7 @@ fn the_page_shares_work_among_workers_and_replaces_them() {
     let printed = Node::with_engine()
         .run("js/pool.test.mjs", &["--test-reporter=spec"], "")
         .unwrap_or_else(|why| panic!("{why}"));
-    assert!(printed.contains("pass 13") && printed.contains("fail 0"), "{printed}");
+    assert!(printed.contains("pass 16") && printed.contains("fail 0"), "{printed}");
 }
 
 #[test]

@@ -52,6 +52,8 @@ export function makeClient(module, startWorker, book = makeBook()) {
   let worker = null;
   /** Whether the browser lets workers run at all. */
   let answered = false;
+  /** When it said something last. */
+  let heard = 0;
   let nextId = 1;
   /** @type {Map<number, Waiting>} */
   const waiting = new Map();
@@ -76,6 +78,7 @@ export function makeClient(module, startWorker, book = makeBook()) {
   function receive(from, reply) {
     const one = waiting.get(reply.id);
     answered = true;
+    if (from === worker) heard = performance.now();
     if (from !== worker || one === undefined) return;
     if ("progress" in reply) return one.progress?.(reply.progress);
     waiting.delete(reply.id);
@@ -201,6 +204,11 @@ export function makeClient(module, startWorker, book = makeBook()) {
 
     /** Whether nothing is waited for. */
     isIdle: () => waiting.size === 0,
+
+    /** How much is waited for, without what is only put away. */
+    waitsFor: () => [...waiting.values()].filter(({ task }) => task.kind !== "close").length,
+
+    heardAt: () => heard,
 
     /** Whether it has ever said anything. */
     hasAnswered: () => answered,

@@ -10,7 +10,7 @@
 
 import { POPULATION_KINDS } from "../kinds.js";
 import { LARGE_BYTES } from "./client.js";
-import { LOST, MOST_TRIES, SILENCE_MS } from "./faults.js";
+import { LOST, makeSilence, MOST_TRIES } from "./faults.js";
 
 /** @import { Member } from "./schedule.js" */
 
@@ -44,28 +44,34 @@ export function makeDrawing(members) {
   }
 
   /** @param {Member} member @param {DrawJob} present @param {DrawnPiece} piece */
-  async function draw({ client }, present, piece) {
+  async function draw(member, present, piece) {
+    const { client } = member;
     const { kind, first, last } = piece;
-    const silent = setTimeout(() => client.abandon("a worker has said nothing any more"), SILENCE_MS);
     const since = performance.now();
     present.running++;
+    const asked = client.ask({ kind: "population", key: present.key, population: kind, first, last });
+    const silence = makeSilence(client);
+    silence.listen();
     try {
       /** @type {Float64Array} */
-      const numbers = await client.ask({ kind: "population", key: present.key, population: kind, first, last });
+      const numbers = await asked;
       speeds[kind] = (performance.now() - since) / (last - first);
       if (job === present) present.drawn(kind, first, numbers);
     } catch (error) {
       const fault = /** @type {Fault} */ (error);
       const lost = LOST.includes(fault.code) && client.hasAnswered();
+      // A helper that cannot be started leaves its draws to the others.
+      const gone = fault.code === "worker-unavailable" && member !== members[0];
+      if (gone) member.gone = true;
       // What was given up for another reason is drawn again as long as it is wanted.
-      if (fault.code === "given-up" || (lost && piece.tries + 1 < MOST_TRIES)) {
+      if (gone || fault.code === "given-up" || (lost && piece.tries + 1 < MOST_TRIES)) {
         present.again.push({ ...piece, tries: piece.tries + Number(lost) });
       } else if (job === present) {
         job = null;
         present.reject(fault);
       }
     } finally {
-      clearTimeout(silent);
+      silence.end();
       present.running--;
       const over = present.running === 0 && present.again.length === 0 && POPULATION_KINDS.every((one) => present.next[one] >= present.size);
       if (job === present && over) {
@@ -81,6 +87,8 @@ export function makeDrawing(members) {
       const front = member === members[0];
       // A helper that reads a large table holds it.
       if (job === null || (job.bytes >= LARGE_BYTES && !front)) return null;
+      // What is asked by hand comes first; when it is answered, work is given out anew.
+      if (member.client.waitsFor() > 0) return null;
       const piece = nextPiece(job, front ? FRONT_MS : ASIDE_MS);
       return piece === null ? null : draw(member, job, piece);
     },

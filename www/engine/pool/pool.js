@@ -29,7 +29,8 @@ function bytesOf({ files = [] }) {
 export function makePool(module, startWorker, helpers = helperCount()) {
   const book = makeBook();
   const clients = Array.from({ length: 1 + helpers }, () => makeClient(module, startWorker, book));
-  const schedule = makeSchedule(clients.map((client) => ({ client, busy: false, gone: false })));
+  const members = clients.map((client) => ({ client, busy: false, gone: false }));
+  const schedule = makeSchedule(members);
   const [front, ...others] = clients;
 
   /** Studies that were asked about by hand, the last one last. @type {number[]} */
@@ -44,18 +45,34 @@ export function makePool(module, startWorker, helpers = helperCount()) {
       for (const key of surplus) front.release(key);
       used = used.filter((key) => !surplus.includes(key));
       // What was asked of a worker that is lost is asked once more.
-      return front.ask(task, progress).catch((fault) => {
+      const answer = front.ask(task, progress).catch((fault) => {
         if (fault.code !== "worker-lost") throw fault;
         return front.ask(task, progress);
       });
+      return answer.finally(schedule.dispatch);
     },
 
     name: front.name,
 
-    /** Asks a helper that has nothing to do, or else the last. @param {WorkerTask} task @param {(step: any) => void} [progress] */
-    askAside(task, progress) {
-      const free = others.find((client) => client.isIdle()) ?? others[others.length - 1];
-      return free.ask(task, progress);
+    /**
+     * Asks a helper that has nothing to do, or else the last; the first worker where none can be started.
+     * @param {WorkerTask} task
+     * @param {(step: any) => void} [progress]
+     * @returns {Promise<any>}
+     */
+    async askAside(task, progress) {
+      const there = members.slice(1).filter(({ gone }) => !gone);
+      const free = there.find(({ client }) => client.isIdle()) ?? there.at(-1);
+      if (free === undefined) return this.ask(task, progress);
+      try {
+        return await free.client.ask(task, progress);
+      } catch (fault) {
+        if (/** @type {Fault} */ (fault).code !== "worker-unavailable") throw fault;
+        free.gone = true;
+        return await this.askAside(task, progress);
+      } finally {
+        schedule.dispatch();
+      }
     },
 
     /** @param {number} key */
@@ -110,7 +127,7 @@ export function makePool(module, startWorker, helpers = helperCount()) {
     /** Lets workers that have nothing to do fit an example for a moment: compiled code is quick after some use. @param {EngineRequest} request */
     warmUp(request) {
       if (isLarge(request)) return;
-      for (const client of clients) if (client.isIdle()) client.ask({ kind: "warm", request }).catch(() => {});
+      for (const client of clients) if (client.isIdle()) client.ask({ kind: "warm", request }).catch(() => {}).finally(schedule.dispatch);
     },
   };
 }

@@ -11,7 +11,7 @@
 
 import { LARGE_BYTES } from "./client.js";
 import { makeDrawing } from "./drawing.js";
-import { LOST, MOST_TRIES, SILENCE_MS } from "./faults.js";
+import { LOST, makeSilence, MOST_TRIES } from "./faults.js";
 
 /** @import { WorkerClient } from "./client.js" */
 
@@ -93,16 +93,12 @@ export function makeSchedule(members) {
     member.busy = true;
     job.running.add(piece);
     let heard = false;
-    let timer = 0;
-    const listen = () => {
-      clearTimeout(timer);
-      timer = /** @type {any} */ (setTimeout)(() => client.abandon("a worker has said nothing any more"), SILENCE_MS);
-    };
+    const silence = makeSilence(client);
     let since = performance.now();
     /** @param {PieceProgress} step */
     const take = (step) => {
       // Opening a large table takes as long as it takes.
-      listen();
+      silence.listen();
       if (!jobs.has(job)) return;
       if ("study" in step) {
         if (heard || job.count !== null) return;
@@ -139,7 +135,7 @@ export function makeSchedule(members) {
       if (jobs.has(job) && again) job.pieces.unshift({ ...piece, tries: piece.tries + 1 });
       else end(job, fault);
     } finally {
-      clearTimeout(timer);
+      silence.end();
       member.busy = false;
       dispatch();
     }
