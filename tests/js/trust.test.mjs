@@ -5,6 +5,8 @@ import { densityCounts } from "../../www/draw/density.js";
 import { seenFrom } from "../../www/draw/head.js";
 import { outlineOf } from "../../www/draw/region.js";
 import { ledgerOf } from "../../www/views/ledger.js";
+import { changedNoise, enteredSetting } from "../../www/views/trust_settings.js";
+import { reportLacksText } from "../../www/text/trust.js";
 
 /** A matrix with inverse and determinant by hand: A = M Mᵀ, so that points of the ellipsoid are c + scale · M u, |u| = 1. */
 const M = [[0.09, 0, 0], [0.03, 0.05, 0], [-0.02, 0.01, 0.11]];
@@ -59,4 +61,43 @@ test("maps are grouped, sorted and filtered by their verdicts; without one they 
   assert.deepEqual(sorted[0].indexes, [2, 5, 1, 0, 4]);
   const filtered = ledgerOf(maps, { ...view, grouping: "none", verdict: "dipolar" }, verdicts);
   assert.deepEqual(filtered.map(({ indexes }) => indexes), [[2, 5]]);
+});
+
+test("what is entered is taken within its limits alone, also those that other settings set", () => {
+  const taken = (path, text, settings = {}) => {
+    const { value, good } = enteredSetting(path.split("."), text, settings);
+    return good ? value : "refused";
+  };
+  for (const text of ["15, 40", "15,40", "15 40", "15;40", "15,0 40,0"]) assert.deepEqual(taken("errors.skullRatio", text), [15, 40], text);
+  assert.deepEqual(taken("errors.skullRatio", "15,5 40"), [15.5, 40]);
+  assert.equal(taken("errors.skullRatio", "0"), null);
+  for (const text of ["40, 15", "15", "15,40,60", "a, b"]) assert.equal(taken("errors.skullRatio", text), "refused", text);
+  assert.equal(taken("limits.ruledOut", "0.9"), "refused", "below what is dipolar unless changed");
+  assert.equal(taken("limits.ruledOut", "0.9", { limits: { oneDipole: 0.8 } }), 0.9);
+  assert.equal(taken("limits.oneDipole", "1"), "refused");
+  assert.equal(taken("limits.oneDipole", "", { limits: { oneDipole: 0.8, ruledOut: 0.9 } }), "refused");
+  assert.equal(taken("limits.oneDipole", "", { limits: { oneDipole: 0.8 } }), undefined);
+  // 0.5 · 0.9 · √(1 + 0.25²) = 0.4638…
+  assert.deepEqual(taken("sources.floor", "0.46, 0.25"), [0.46, 0.25]);
+  assert.equal(taken("sources.floor", "0.47, 0.25"), "refused");
+  assert.equal(taken("sources.floor", "-0.5, -1.5"), "refused");
+  assert.equal(taken("sources.maxEccentricity", "0.5", { sources: { floor: [0.4, 0] } }), "refused");
+  assert.equal(taken("sources.draws", "1000.5"), "refused");
+});
+
+test("noise of one kind stays when a field of the other is emptied", () => {
+  const pair = { singleTrialSd: 10, trials: 100 };
+  assert.deepEqual(changedNoise({ sd: 2 }, { sd: 2 }, "trials"), { sd: 2 });
+  assert.deepEqual(changedNoise({ sd: 2 }, { sd: 2, singleTrialSd: 10 }, "singleTrialSd"), { sd: 2 });
+  assert.deepEqual(changedNoise({ sd: 2 }, { sd: 2, ...pair }, "trials"), pair);
+  assert.equal(changedNoise({ sd: 2 }, {}, "sd"), undefined);
+  assert.equal(changedNoise(pair, { singleTrialSd: 10 }, "trials"), undefined);
+  assert.deepEqual(changedNoise(pair, pair, "sd"), pair);
+  assert.deepEqual(changedNoise(pair, { sd: 3, ...pair }, "sd"), { sd: 3 });
+});
+
+test("a report says what it is without", () => {
+  assert.equal(reportLacksText({ regions: null, populations: false }), "");
+  assert.match(reportLacksText({ regions: 1000, populations: false }), /^The report has regions for tables of up to 1,000 maps/);
+  assert.match(reportLacksText({ regions: 1000, populations: true }), /verdicts once .* drawn\. It has regions/);
 });

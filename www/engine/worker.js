@@ -6,7 +6,7 @@
 
 import { makeEngine } from "./engine.js";
 import { faultOf, lacksMemory } from "./fault.js";
-import { POPULATION_KINDS } from "./kinds.js";
+import { MOST_REGIONS, POPULATION_KINDS } from "./kinds.js";
 import { compileWasm } from "./wasm.js";
 import { harmless } from "../text/figures.js";
 import { comparisonParts, reportHead, reportMap, reportTail } from "../export/json.js";
@@ -153,9 +153,6 @@ function handOver(study, given) {
   for (const kind of POPULATION_KINDS) study.keepPopulation(kind, given.kinds[kind]);
   handed.set(study, given.name);
 }
-
-/** Maps of a table whose report has the region of each: they take 10 ms each. */
-const MOST_REGIONS = 1000;
 
 /** Reports of maps with what is named, from one on for about so long. @param {Study} study @param {number} first @param {string[]} what @param {number} milliseconds */
 function assessWithin(study, first, what, milliseconds) {

@@ -1,5 +1,6 @@
 /** Questions about what has been fitted: single maps, reports, and several decompositions together. */
 
+import { MOST_REGIONS } from "../engine/kinds.js";
 import { freshMaps } from "./decompositions.js";
 
 /** @import { Pool } from "../engine/pool/pool.js" */
@@ -29,6 +30,12 @@ export function makeInquiries(store, pool, fail, fitting) {
     } finally {
       store.write({ progress: null });
     }
+  }
+
+  /** Populations of the present answer; without all of them a report would be another one each time. */
+  function wholePopulations() {
+    const { answer, populations } = store.read();
+    return populations?.state === "done" && populations.answer === answer?.key ? populations : null;
   }
 
   return {
@@ -133,13 +140,18 @@ export function makeInquiries(store, pool, fail, fitting) {
       return engine.ask({ kind: "matches", keys: [a.key, b.key], own: positions(a), others: positions(b), names });
     },
 
+    /** What a report made now would be without. */
+    reportLacks() {
+      const { answer } = store.read();
+      return { regions: answer !== null && answer.count > MOST_REGIONS ? MOST_REGIONS : null, populations: answer !== null && wholePopulations() === null };
+    },
+
     /** The whole report of the present answer. @returns {Promise<Blob | null>} */
     async report() {
-      const { answer, populations: drawn } = store.read();
+      const { answer } = store.read();
       if (answer === null) return null;
-      // Without all of them a report would be another one each time.
-      const whole = drawn?.state === "done" && drawn.answer === answer.key;
-      const populations = drawn && whole ? { name: `${drawn.key} ${drawn.kinds.noise.length / 2}`, kinds: drawn.kinds } : null;
+      const drawn = wholePopulations();
+      const populations = drawn !== null ? { name: `${drawn.key} ${drawn.kinds.noise.length / 2}`, kinds: drawn.kinds } : null;
       return inTime((engine, take) => engine.ask({ kind: "report", key: answer.key, populations }, take));
     },
   };

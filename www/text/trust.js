@@ -98,6 +98,15 @@ export function drawnText({ done, total }, left, told) {
   return `${text}${left === null ? "" : `, ${leftText(left)} left`}${early}`;
 }
 
+/** What a report is without for now. @param {{ regions: number | null, populations: boolean }} lacks `regions`: the most maps that have them */
+export function reportLacksText({ regions, populations }) {
+  const lines = [
+    populations ? "The report has reference populations and verdicts once all reference maps are drawn." : "",
+    regions === null ? "" : `It has regions for tables of up to ${regions.toLocaleString("en-GB")} maps only; this one has more.`,
+  ];
+  return lines.filter((line) => line !== "").join(" ").replace(/^It has/, "The report has");
+}
+
 /** This map in a figure of populations. @param {number} rv */
 export function thisMapText(rv) {
   return `${TRUST_WORDS["populations.here"]}: RV ${percentText(rv)}`;

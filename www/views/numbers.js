@@ -5,7 +5,8 @@
 
 import { copyText, saveBlob } from "../export/out.js";
 import { tableText } from "../export/table.js";
-import { enteredNumber, enteredText } from "../text/figures.js";
+import { enteredNumber, enteredText, NO_BREAK, typeset } from "../text/figures.js";
+import { reportLacksText } from "../text/trust.js";
 import { word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { make, need } from "./element.js";
@@ -106,6 +107,15 @@ export function showNumbers(session) {
     saving = false;
     if (report !== null) saveBlob(report, REPORT_NAME);
   });
+
+  const lacks = need("report-lacks", HTMLElement);
+  session.watch(
+    ({ answer, populations }) => `${answer?.key} ${answer?.count} ${populations?.answer} ${populations?.state}`,
+    () => {
+      // Its room stays, so that nothing moves when all is drawn.
+      lacks.textContent = typeset(reportLacksText(session.reportLacks())) || NO_BREAK;
+    },
+  );
 
   session.watch(
     (state) => state.answer?.sheet,

@@ -144,7 +144,10 @@ export function keepTyped(part, write) {
   for (const field of fields) {
     const now = document.getElementById(field.id);
     if (!(now instanceof HTMLInputElement) || now === field) continue;
-    if (now.defaultValue === field.defaultValue) now.value = field.value;
+    if (now.defaultValue === field.defaultValue && field.value !== field.defaultValue) {
+      now.value = field.value;
+      if (field.ariaInvalid !== null) now.ariaInvalid = field.ariaInvalid;
+    }
     if (field === focused) now.setSelectionRange(field.selectionStart, field.selectionEnd);
   }
   if (inside) (document.getElementById(focused.id) ?? need("main", HTMLElement)).focus({ preventScroll: true });

@@ -39,15 +39,75 @@ const TRUST_FIELDS = [
 const COUNTED = ["draws", "seed", "trials", "backgroundSources"];
 const ORIENTATIONS = ["isotropic", "radial", "tangential"];
 
-/** What an entry means; undefined for what is outside of the limits. @param {TrustField} field @param {string} text */
-function enteredSetting({ path, limits: [least, most], pair }, text) {
-  const numbers = pair === true ? text.split(/[;\s]+|,\s+/).filter((part) => part !== "").map(enteredNumber) : [enteredNumber(text)];
+/** The field of a setting. @param {string[]} path @returns {TrustField} */
+function fieldOf([group, key]) {
+  return /** @type {TrustField} */ (TRUST_FIELDS.find(({ path }) => path[0] === group && path[1] === key));
+}
+
+/** Two numbers. A comma without a blank is a decimal one unless nothing else stands between them. @param {string} text */
+function pairParts(text) {
+  const parts = text.split(/[;\s]+|,\s+/).filter((part) => part !== "");
+  return parts.length === 1 ? parts[0].split(",") : parts;
+}
+
+/**
+ * What an entry means; undefined for what is outside of the limits.
+ * @param {TrustField} field
+ * @param {string} text
+ * @returns {number | (number | undefined)[] | null | undefined}
+ */
+function withinLimits({ path, limits: [least, most], pair }, text) {
+  const numbers = (pair === true ? pairParts(text) : [text]).map(enteredNumber);
   if (path[1] === "skullRatio" && numbers.every((one) => one === 0)) return null;
   const counted = COUNTED.includes(path[1]);
   if (!numbers.every((one) => one >= least && one <= most && (!counted || Number.isInteger(one)))) return undefined;
   if (pair !== true) return numbers[0];
   const rising = path[1] !== "skullRatio" || numbers[0] <= numbers[1];
   return numbers.length === 2 && rising ? numbers : undefined;
+}
+
+/**
+ * Whether settings that limit each other fit together, as the engine wants them.
+ * @param {string[]} path
+ * @param {unknown} value undefined for what holds without an entry
+ * @param {Pick<PageSettings, "sources" | "limits">} settings
+ */
+function fitsOthers([group, key], value, settings) {
+  /** @param {string[]} path @returns {any} */
+  const held = (path) => {
+    const entered = path[0] === group && path[1] === key ? value : /** @type {any} */ (settings)[path[0]]?.[path[1]];
+    return entered ?? withinLimits(fieldOf(path), fieldOf(path).standard);
+  };
+  if (group === "limits") return held(["limits", "oneDipole"]) <= held(["limits", "ruledOut"]);
+  if (group !== "sources") return true;
+  const [height, slope] = held(["sources", "floor"]);
+  // The engine wants the floor no farther above the centre than half the radius of the ball of sources.
+  return Math.abs(slope) <= 1 && height <= 0.5 * held(["sources", "maxEccentricity"]) * Math.hypot(1, slope);
+}
+
+/**
+ * What an entry means, nothing for an empty one, and whether it can be taken beside the other settings.
+ * @param {string[]} path
+ * @param {string} text
+ * @param {Pick<PageSettings, "sources" | "limits">} settings
+ */
+export function enteredSetting(path, text, settings) {
+  const empty = text.trim() === "";
+  const value = empty ? undefined : withinLimits(fieldOf(path), text.trim());
+  return { value, good: (empty || value !== undefined) && fitsOthers(path, value, settings) };
+}
+
+/**
+ * Noise after a change of one of its fields: one number, or two that belong together. What cannot be taken alone changes nothing.
+ * @param {PageSettings["noise"]} held
+ * @param {Record<string, number | undefined>} entered all fields, as they are now
+ * @param {string} key of the one that was changed
+ */
+export function changedNoise(held, { sd, singleTrialSd, trials }, key) {
+  if (key === "sd" && sd !== undefined) return { sd };
+  if (singleTrialSd !== undefined && trials !== undefined) return { singleTrialSd, trials };
+  const emptied = held !== undefined && held !== null && key in held && { sd, singleTrialSd, trials }[key] === undefined;
+  return emptied ? undefined : held;
 }
 
 /** A setting as it is written into its field. @param {PageSettings} settings @param {string[]} path */
@@ -63,34 +123,27 @@ export function showTrustSettings(session) {
   const body = need("trust-fields", HTMLElement);
   const fault = need("trust-fault", HTMLElement);
 
-  /** Noise is one number, or two that belong together. @param {string} key @param {unknown} value */
-  function setNoise(key, value) {
-    const entries = ["sd", "singleTrialSd", "trials"].map((one) => /** @type {[string, unknown]} */ ([
-      one,
-      one === key ? value : enteredNumber(need(settingId(["noise", one]), HTMLInputElement).value),
-    ]));
-    const noise = Object.fromEntries(entries.filter(([, one]) => Number.isFinite(one)));
-    if (key === "sd" && value !== undefined) session.set({ noise: /** @type {any} */ ({ sd: value }) });
-    else if (noise.singleTrialSd !== undefined && noise.trials !== undefined) {
-      session.set({ noise: /** @type {any} */ ({ singleTrialSd: noise.singleTrialSd, trials: noise.trials }) });
-    } else if (value === undefined) session.set({ noise: undefined });
+  /** @param {string} key */
+  function setNoise(key) {
+    const { settings } = session.read();
+    /** @param {string} one */
+    const entry = (one) => [one, enteredSetting(["noise", one], need(settingId(["noise", one]), HTMLInputElement).value, settings).value];
+    const noise = changedNoise(settings.noise, Object.fromEntries(["sd", "singleTrialSd", "trials"].map(entry)), key);
+    if (noise !== settings.noise) session.set({ noise: /** @type {any} */ (noise) });
   }
 
   /** @param {TrustField} field */
-  function fieldElement(field) {
-    const { path, limits, standard } = field;
+  function fieldElement({ path, limits, standard }) {
     const row = make("div", "", { class: "setting-row" });
     const id = settingId(path);
     const attributes = { type: "text", inputmode: "decimal", autocomplete: "off", id, "aria-describedby": `${id}-hint` };
     const input = /** @type {HTMLInputElement} */ (make("input", "", { ...attributes, value: heldText(session.read().settings, path) }));
     input.addEventListener("change", () => {
-      const empty = input.value.trim() === "";
-      const value = empty ? undefined : enteredSetting(field, input.value.trim());
-      const good = empty || value !== undefined;
+      const { value, good } = enteredSetting(path, input.value, session.read().settings);
       input.setAttribute("aria-invalid", String(!good));
-      fault.textContent = good ? "" : word("trust.invalid");
+      fault.textContent = body.querySelector(`[aria-invalid="true"]`) === null ? "" : word("trust.invalid");
       if (!good) return;
-      if (path[0] === "noise") setNoise(path[1], value);
+      if (path[0] === "noise") setNoise(path[1]);
       else session.setAt(path, value);
     });
     row.append(
