@@ -125,10 +125,9 @@ interface Trust {
   /** Null while no reference populations are kept. */
   verdict: {
     word: VerdictWord;
-    title: string;
-    sentence: string;
+    text: string;
     reasons: { code: string; text: string; value: number | null; limit: number | null }[];
-    hints: { code: string; text: string }[];
+    hints: { code: string; text: string; basis: string }[];
   } | null;
   region: {
     sentence: string;

@@ -1,11 +1,13 @@
 // What is drawn of a region and of reference populations, and how maps are listed by verdict. Run by tests/trust.rs.
 import assert from "node:assert/strict";
+import { readFileSync } from "node:fs";
 import { test } from "node:test";
+import { pathToFileURL } from "node:url";
 import { densityCounts } from "../../www/draw/density.js";
 import { seenFrom } from "../../www/draw/head.js";
 import { outlineOf } from "../../www/draw/region.js";
 import { ledgerOf } from "../../www/views/ledger.js";
-import { changedNoise, enteredSetting } from "../../www/views/trust_settings.js";
+import { changedNoise, enteredSetting, TRUST_FIELDS, withinLimits } from "../../www/views/trust_settings.js";
 import { reportLacksText } from "../../www/text/trust.js";
 
 /** A matrix with inverse and determinant by hand: A = M Mᵀ, so that points of the ellipsoid are c + scale · M u, |u| = 1. */
@@ -100,4 +102,41 @@ test("a report says what it is without", () => {
   assert.equal(reportLacksText({ regions: null, populations: false }), "");
   assert.match(reportLacksText({ regions: 1000, populations: false }), /^The report has regions for tables of up to 1,000 maps/);
   assert.match(reportLacksText({ regions: 1000, populations: true }), /verdicts once .* drawn\. It has regions/);
+});
+
+test("the limits and defaults of the fields are the engine's", async () => {
+  const { openEngine } = await import(pathToFileURL(`${process.env.INWARD_DIST}/engine/inward.mjs`).href);
+  const engine = await openEngine();
+  const maps = readFileSync(new URL("../../example_maps/lamp.tsv", import.meta.url), "utf8");
+  const study = engine.open({ maps });
+  const { settings: defaults } = study.preamble();
+  const code = (settings) => {
+    try {
+      study.with(settings).close();
+      return "taken";
+    } catch (error) {
+      return error.code;
+    }
+  };
+  const beside = { trials: { singleTrialSd: 1 }, singleTrialSd: { trials: 4 }, oneDipole: { ruledOut: 1 }, ruledOut: { oneDipole: 0.5 } };
+  let tried = 0;
+  for (const field of TRUST_FIELDS) {
+    const { path: [group, key], limits: [least, most], standard, pair } = field;
+    const name = `${group}.${key}`;
+    if (standard !== "") assert.deepEqual(defaults[group][key], withinLimits(field, standard.replace("10,000", "10000")), name);
+    else assert.equal(defaults[group]?.[key] ?? null, null, name);
+    // Of the floor only what its height may be at least is a limit of its own.
+    const given = (value) => (pair ? [value, key === "floor" ? 0 : most] : value);
+    const set = (value) => ({ [group]: { ...beside[key], [key]: given(value) } });
+    const ends = key === "floor" ? [[least, -0.01]] : [[least, -0.01 * least || -0.01], [most, 0.01 * most]];
+    for (const [end, step] of key === "seed" ? [] : ends) {
+      const off = ["draws", "trials", "backgroundSources"].includes(key) ? Math.sign(step) : step;
+      assert.equal(code(set(end)), "taken", `${name} ${end}`);
+      const beyond = code(set(end + off));
+      // A count below 0 is no count at all.
+      assert.equal(beyond, end + off < 0 && Number.isInteger(end + off) && key === "backgroundSources" ? "settings-unknown" : "setting-range", `${name} ${end + off}`);
+      tried++;
+    }
+  }
+  assert.ok(tried > 25, String(tried));
 });

@@ -7,7 +7,6 @@ use inward_core::head::{ShellSpec, Shells};
 use inward_core::math::{Ellipsoid, Vec3, centre, dot, f_quantile};
 use inward_core::simulate::{Background, HeadErrors, Kind, Noise, Orientation, Population, Refits, SourceRule};
 use inward_tests::{Draw, Electrodes, PlainSeries};
-use std::sync::OnceLock;
 
 const BRAIN: f64 = 79.0 / 88.0;
 const RULE: SourceRule = SourceRule { max_eccentricity: 0.9, floor: [-0.5, 0.25], orientation: Orientation::Isotropic };
@@ -374,8 +373,7 @@ fn planted_truths_are_judged_as_they_are() {
 /// What is rare at one depth may be usual at another.
 #[test]
 fn shares_at_one_depth_rest_on_at_least_two_hundred_draws() {
-    static DRAWS: OnceLock<Vec<inward_core::simulate::Draw>> = OnceLock::new();
-    let draws = DRAWS.get_or_init(|| Bench::new(32).population().draws(Kind::TwoDipoles, 0..2000));
+    let draws = Bench::new(32).population().draws(Kind::TwoDipoles, 0..2000);
     let reference = Reference::new(draws.clone()).unwrap();
     let mut distances: Vec<f64> = draws.iter().map(|draw| (draw.eccentricity - 0.02).abs()).collect();
     distances.sort_by(f64::total_cmp);

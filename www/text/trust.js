@@ -6,7 +6,8 @@ import { enteredText, leftText, NO_BREAK, percentText, typeset } from "./figures
 export const TRUST_WORDS = {
   trust: "How far to trust it",
   "verdict.waiting": "The verdict follows when the reference maps are drawn.",
-  "verdict.stopped": "Drawing was stopped: without all reference maps there is no verdict.",
+  "verdict.stopped": "Drawing was stopped before there were reference maps enough for a verdict.",
+  "verdict.part": "So far: by a part of the reference maps.",
   "verdict.stop": "Stop drawing",
   "verdict.go": "Continue drawing",
   "verdict.progress": "Reference maps drawn",
@@ -65,7 +66,9 @@ export const TRUST_WORDS = {
   "trust.noise": "Noise, in the maps’ unit; without it, that of the residual",
   "trust.sources": "Sources of reference populations",
   "trust.limits": "Limits of the verdict",
-  "trust.invalid": "This lies outside of its limits and was not taken.",
+  "trust.pair": "two numbers",
+  "trust.rising": "two numbers, the smaller one first",
+  "trust.trials": "A single trial’s standard deviation counts together with the number of trials only.",
   "set.errors.electrodesMm": "Electrodes misplaced, mm",
   "set.errors.skullRatio": "Brain-to-skull ratio, from and to; 0 for that of the head",
   "set.errors.sphere": "Sphere off, times the standard error of its fit",
@@ -91,11 +94,10 @@ export const TRUST_WORDS = {
   "orientation.tangential": "tangential",
 };
 
-/** @param {Populations} populations @param {number | null} left seconds @param {boolean} told whether a verdict is told already */
-export function drawnText({ done, total }, left, told) {
+/** @param {Populations} populations @param {number | null} left seconds */
+export function drawnText({ done, total }, left) {
   const text = `${done.toLocaleString("en-GB")} of ${total.toLocaleString("en-GB")} reference maps drawn`;
-  const early = told ? "; the verdict is of a part so far" : "";
-  return `${text}${left === null ? "" : `, ${leftText(left)} left`}${early}`;
+  return left === null ? text : `${text}, ${leftText(left)} left`;
 }
 
 /** What a report is without for now. @param {{ regions: number | null, populations: boolean }} lacks `regions`: the most maps that have them */
@@ -123,8 +125,13 @@ export function fieldText([least, most], standard) {
   return typeset(standard === "" ? range : `${range}; ${standard} unless changed`).replaceAll(" to ", `${NO_BREAK}to${NO_BREAK}`);
 }
 
-/** A verdict's word, and the rest of its sentence. @param {{ title: string, sentence: string }} verdict */
-export function verdictParts({ title, sentence }) {
-  if (!sentence.toLowerCase().startsWith(title)) return [beginning(title), ` ${sentence}`];
-  return [sentence.slice(0, title.length), sentence.slice(title.length)];
+/** A verdict's word, and the rest of its sentence, which begins with it. @param {{ word: VerdictWord, text: string }} verdict */
+export function verdictParts({ word, text }) {
+  const { length } = TRUST_WORDS[`verdict.${word}`];
+  return [text.slice(0, length), text.slice(length)];
+}
+
+/** Of an entry that was not taken, by the words beside its field. @param {string} label @param {string} hint */
+export function notTakenText(label, hint) {
+  return `“${label}” was not taken: ${hint}.`;
 }

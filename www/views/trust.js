@@ -103,7 +103,8 @@ export function showTrust(session) {
   function writeVerdict(verdict, state) {
     if (verdict) {
       const [title, rest] = verdictParts(verdict);
-      said.replaceChildren(verdictMark(verdict.word), make("strong", title), ...withTerms(typeset(rest)));
+      const part = state === "done" ? [] : [make("span", ` ${word("verdict.part")}`, { class: "small" })];
+      said.replaceChildren(verdictMark(verdict.word), make("strong", title), ...withTerms(typeset(rest)), ...part);
     } else if (state === "done") {
       // It comes in a moment; its room stays, so that nothing moves.
       return;
@@ -126,7 +127,7 @@ export function showTrust(session) {
     go.hidden = state !== "stopped";
     if (populations === null || !busy) return;
     progress.value = populations.done / Math.max(1, populations.total);
-    need("drawn", HTMLElement).textContent = drawnText(populations, leftOf(populations), !!answer?.trust?.verdict);
+    need("drawn", HTMLElement).textContent = drawnText(populations, leftOf(populations));
   }
 
   session.watch(({ populations }) => populations, showState);

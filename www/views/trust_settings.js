@@ -1,7 +1,7 @@
 /** What regions, reference populations and verdicts rest on, to be changed in place. */
 
 import { enteredNumber, enteredText } from "../text/figures.js";
-import { fieldText } from "../text/trust.js";
+import { fieldText, notTakenText } from "../text/trust.js";
 import { word } from "../text/words.js";
 import { make, need } from "./element.js";
 import { keepTyped, settingId } from "./setting.js";
@@ -14,7 +14,7 @@ import { keepTyped, settingId } from "./setting.js";
  */
 
 /** @type {TrustField[]} */
-const TRUST_FIELDS = [
+export const TRUST_FIELDS = [
   { path: ["errors", "electrodesMm"], limits: [0, 30], standard: "5" },
   { path: ["errors", "skullRatio"], limits: [1, 1000], standard: "15, 40", pair: true },
   { path: ["errors", "sphere"], limits: [0, 10], standard: "1" },
@@ -56,7 +56,7 @@ function pairParts(text) {
  * @param {string} text
  * @returns {number | (number | undefined)[] | null | undefined}
  */
-function withinLimits({ path, limits: [least, most], pair }, text) {
+export function withinLimits({ path, limits: [least, most], pair }, text) {
   const numbers = (pair === true ? pairParts(text) : [text]).map(enteredNumber);
   if (path[1] === "skullRatio" && numbers.every((one) => one === 0)) return null;
   const counted = COUNTED.includes(path[1]);
@@ -110,6 +110,12 @@ export function changedNoise(held, { sd, singleTrialSd, trials }, key) {
   return emptied ? undefined : held;
 }
 
+/** What a field takes. @param {TrustField} field */
+function hintOf({ path, limits, standard, pair }) {
+  const taken = fieldText(limits, standard);
+  return pair === true ? `${word(path[1] === "skullRatio" ? "trust.rising" : "trust.pair")}, ${taken}` : taken;
+}
+
 /** A setting as it is written into its field. @param {PageSettings} settings @param {string[]} path */
 function heldText(settings, [group, key]) {
   const held = /** @type {any} */ (settings)[group]?.[key];
@@ -132,8 +138,18 @@ export function showTrustSettings(session) {
     if (noise !== settings.noise) session.set({ noise: /** @type {any} */ (noise) });
   }
 
+  /** What was entered and does not count, field by field. */
+  function tellFaults() {
+    const refused = TRUST_FIELDS.filter(({ path }) => need(settingId(path), HTMLInputElement).getAttribute("aria-invalid") === "true");
+    const told = refused.map((field) => notTakenText(word(`set.${field.path.join(".")}`), hintOf(field)));
+    const [single, trials] = ["singleTrialSd", "trials"].map((key) => need(settingId(["noise", key]), HTMLInputElement).value.trim() !== "");
+    if (single !== trials) told.push(word("trust.trials"));
+    fault.textContent = told.join(" ");
+  }
+
   /** @param {TrustField} field */
-  function fieldElement({ path, limits, standard }) {
+  function fieldElement(field) {
+    const { path } = field;
     const row = make("div", "", { class: "setting-row" });
     const id = settingId(path);
     const attributes = { type: "text", inputmode: "decimal", autocomplete: "off", id, "aria-describedby": `${id}-hint` };
@@ -141,7 +157,7 @@ export function showTrustSettings(session) {
     input.addEventListener("change", () => {
       const { value, good } = enteredSetting(path, input.value, session.read().settings);
       input.setAttribute("aria-invalid", String(!good));
-      fault.textContent = body.querySelector(`[aria-invalid="true"]`) === null ? "" : word("trust.invalid");
+      tellFaults();
       if (!good) return;
       if (path[0] === "noise") setNoise(path[1]);
       else session.setAt(path, value);
@@ -149,7 +165,7 @@ export function showTrustSettings(session) {
     row.append(
       make("label", word(`set.${path.join(".")}`), { for: id }),
       input,
-      make("span", fieldText(limits, standard), { class: "small", id: `${id}-hint` }),
+      make("span", hintOf(field), { class: "small", id: `${id}-hint` }),
     );
     return row;
   }
@@ -167,22 +183,24 @@ export function showTrustSettings(session) {
     return row;
   }
 
-  const write = () =>
-    keepTyped(body, () => {
-      body.replaceChildren(...["errors", "noise", "sources", "limits"].map((group) => {
-        const part = make("fieldset", "");
-        part.append(make("legend", word(`trust.${group}`)));
-        part.append(...TRUST_FIELDS.filter(({ path }) => path[0] === group).map(fieldElement));
-        if (group === "sources") part.append(orientationElement());
-        return part;
-      }));
-    });
+  function write() {
+    body.replaceChildren(...["errors", "noise", "sources", "limits"].map((group) => {
+      const part = make("fieldset", "");
+      part.append(make("legend", word(`trust.${group}`)));
+      part.append(...TRUST_FIELDS.filter(({ path }) => path[0] === group).map(fieldElement));
+      if (group === "sources") part.append(orientationElement());
+      return part;
+    }));
+  }
   need("trust-defaults", HTMLButtonElement).addEventListener("click", () => {
     fault.textContent = "";
-    session.set({ errors: undefined, noise: undefined, sources: undefined, limits: undefined });
+    const { errors, noise, sources, limits } = session.read().settings;
+    const own = [errors, noise, sources, limits].some((one) => one !== undefined && one !== null);
+    if (own) session.set({ errors: undefined, noise: undefined, sources: undefined, limits: undefined });
+    // What was refused goes too.
     write();
   });
   write();
   // One after the other: the fields follow whatever changes them.
-  session.watch(({ settings: { errors, noise, sources, limits } }) => JSON.stringify([errors, noise, sources, limits]), write);
+  session.watch(({ settings: { errors, noise, sources, limits } }) => JSON.stringify([errors, noise, sources, limits]), () => keepTyped(body, write));
 }

@@ -5,8 +5,9 @@ use crate::assess::{Bar, Judged, Reference, degrees_of_freedom, hints, usual_spa
 use crate::finding::{Code, Error, Finding};
 use crate::fit::{Fit, Stopped, Tangent};
 use crate::math::{
-    Autocorrelation, Ellipsoid, Symmetric3, Vec3, chi_squared_3_quantile, dot, f_quantile, mean, neighbours,
+    Autocorrelation, Ellipsoid, Symmetric3, Vec3, chi_squared_3_quantile, dot, f_quantile, mean, neighbours, select,
 };
+use crate::placement::Placed;
 use crate::report::{
     Among, Assessment, CauseReport, DrawnEllipsoid, FittedMap, NoiseOnly, NoiseSettings, PopulationReport,
     RegionReport, Repeats, Settings, Trust, VerdictReport, rule,
@@ -36,6 +37,8 @@ pub(super) struct Simulated {
     neighbours: Arc<OnceLock<Vec<[usize; 2]>>>,
     /// Their usual angle.
     spacing_deg: Arc<OnceLock<f64>>,
+    /// Of this study's own settings.
+    errors: OnceLock<HeadErrors>,
 }
 
 /// Populations by the place of their kind.
@@ -45,7 +48,7 @@ type Kept = [Option<Arc<Reference>>; Kind::ALL.len()];
 struct Region {
     report: RegionReport,
     cloud: Vec<Vec3>,
-    ellipsoid: Option<DrawnEllipsoid>,
+    ellipsoid: DrawnEllipsoid,
     noise_only: Option<DrawnEllipsoid>,
 }
 
@@ -62,6 +65,8 @@ impl Simulated {
             repeats: Arc::default(),
             neighbours: if same { Arc::clone(&kept.neighbours) } else { Arc::default() },
             spacing_deg: if same { Arc::clone(&kept.spacing_deg) } else { Arc::default() },
+            // Made for the key.
+            errors: study.simulated.errors.clone(),
         }
     }
 }
@@ -77,7 +82,7 @@ impl Study {
         }
         let HeadErrors { points, electrodes, skull_ratio, sphere, .. } = self.head_errors();
         points.iter().chain(self.fitter.field().directions()).for_each(|point| add(&point.0));
-        add(&[electrodes, sphere.map_or(0.0, |(sd, _)| sd)]);
+        add(&[*electrodes, sphere.as_ref().map_or(0.0, |(sd, _)| *sd)]);
         add(&skull_ratio.unwrap_or_default());
         let Settings { errors, sources, .. } = &self.settings;
         add(&[errors.background_sources as f64, sources.draws as f64, f64::from(sources.seed)]);
@@ -97,7 +102,7 @@ impl Study {
         let population = Population {
             fitter: &self.fitter,
             rule: self.source_rule(),
-            errors: &self.head_errors(),
+            errors: self.head_errors(),
             background: self.background(),
             noise: sources.noise,
             seed: u64::from(sources.seed),
@@ -118,10 +123,10 @@ impl Study {
         self.kept()[kind.place()].clone()
     }
 
-    /// All populations, those that are not kept whole drawn first.
-    fn references(&self) -> Vec<(Kind, Arc<Reference>)> {
+    /// Populations of these kinds, those that are not kept whole drawn first.
+    fn references(&self, kinds: &[Kind]) -> Vec<(Kind, Arc<Reference>)> {
         let size = self.population_size();
-        let whole = |kind: Kind| {
+        let whole = |&kind: &Kind| {
             let kept = self.reference(kind);
             if let Some(kept) = kept.as_ref().filter(|kept| kept.draws().len() == size) {
                 return Some((kind, Arc::clone(kept)));
@@ -133,7 +138,7 @@ impl Study {
             self.kept()[kind.place()] = Some(Arc::clone(&reference));
             Some((kind, reference))
         };
-        Kind::ALL.into_iter().filter_map(whole).collect()
+        kinds.iter().filter_map(whole).collect()
     }
 
     fn population_reports(&self, references: &[(Kind, Arc<Reference>)]) -> Vec<PopulationReport> {
@@ -165,10 +170,10 @@ impl Study {
         }
         if what.contains(&Assessment::Populations) {
             let among = |(kind, reference): &(Kind, Arc<Reference>)| among(map, *kind, reference);
-            map.populations = Some(self.references().iter().map(among).collect());
+            map.populations = Some(self.references(&Kind::ALL).iter().map(among).collect());
         }
         if what.contains(&Assessment::Verdict) {
-            self.references();
+            self.references(&BARS);
             map.verdict = self.verdict(map);
         }
     }
@@ -253,7 +258,7 @@ impl Study {
         let tangent = self.fitter.tangent(fit);
         let refits = self.simulated.refits.get_or_init(|| {
             let seed = u64::from(errors.seed);
-            Refits::new(&self.fitter, &self.head_errors(), self.background(), errors.draws, seed)
+            Refits::new(&self.fitter, self.head_errors(), self.background(), errors.draws, seed)
         });
         let known = noise.as_ref().map(NoiseSettings::sd);
         let scatter = refits.scatter(&self.fitter, fit, &tangent, known.map_or(Noise::FromResidual, Noise::Sd));
@@ -299,14 +304,14 @@ impl Study {
             axes: axes.map(|(_, direction)| self.placement.axes.axes.to_table(direction)),
             volume_ml: ellipsoid.volume() * radius * radius * radius * 1e-3,
             depth_sd_mm: radius * off(&|one| one.position.norm() - fit.position.norm()),
-            direction_deg: self.turned(&scatter.together, fit),
+            direction_deg: turned(&scatter.together, fit),
             strength_sd: off(&|one| one.moment.norm() / strength - 1.0),
             noise_only: noise.0,
             residual_structure: structure.map(Into::into),
             repeats: self.repeats(),
             reaches_boundary: reaches(&ellipsoid, reach),
         };
-        Some(Region { report, cloud, ellipsoid: Some((&ellipsoid).into()), noise_only: noise.1 })
+        Some(Region { report, cloud, ellipsoid: (&ellipsoid).into(), noise_only: noise.1 })
     }
 
     /// What independent noise would say: the profile region RSS ≤ RSS_min (1 + 3 F / (N − 7)) with the quantile F of 3 and
@@ -360,17 +365,6 @@ impl Study {
         [0, 1, 2].map(|i| [0, 1, 2].map(|j| entry(i, j)))
     }
 
-    /// Angle in degrees that the share [`LEVEL`] of the moments stay within; a moment and its opposite are one axis only
-    /// where the sign means nothing, and a refit keeps the sign.
-    fn turned(&self, refits: &[Fit], fit: &Fit) -> f64 {
-        let angle =
-            |one: &Fit| libm::atan2(one.moment.cross(fit.moment).norm(), one.moment.dot(fit.moment)).to_degrees();
-        let mut angles: Vec<f64> = refits.iter().map(angle).collect();
-        let Some(last) = angles.len().checked_sub(1) else { return 0.0 };
-        let at = (libm::ceil(LEVEL * angles.len() as f64) as usize).saturating_sub(1).min(last);
-        crate::math::select(&mut angles, at)
-    }
-
     /// Scatter of the fits of all maps, where they are repeats of one.
     fn repeats(&self) -> Option<Repeats> {
         /// Of fewer no scatter is told.
@@ -402,7 +396,7 @@ impl Study {
 
     fn rule(&self, draws: usize) -> String {
         let HeadErrors { skull_ratio, sphere, .. } = self.head_errors();
-        rule(&self.head(), self.fitter.field().count(), &self.settings, skull_ratio, sphere.is_some(), draws)
+        rule(&self.head(), self.fitter.field().count(), &self.settings, *skull_ratio, sphere.is_some(), draws)
     }
 
     fn source_rule(&self) -> SourceRule {
@@ -418,41 +412,44 @@ impl Study {
         Background { sources: self.settings.errors.background_sources, rule: self.source_rule() }
     }
 
-    fn head_errors(&self) -> HeadErrors {
-        let radius = self.placement.sphere.sphere.radius;
-        let errors = &self.settings.errors;
-        let points: Vec<Vec3> =
-            self.placement.used().map(|e| self.placement.canonical(e.position_mm) * (1.0 / radius)).collect();
-        HeadErrors {
-            electrodes: errors.electrodes_mm / radius,
-            skull_ratio: errors.skull_ratio.filter(|_| HeadErrors::has_skull(&self.shells)),
-            sphere: self.sphere_fit(),
-            shells: self.shells.clone(),
-            points,
-        }
-    }
-
-    /// What the sphere's fit leaves open, times the wish; `None` where the sphere was not fitted.
-    fn sphere_fit(&self) -> Option<(f64, crate::math::Cholesky)> {
-        let head = self.head();
-        if !(head.centre_is_fitted && head.radius_is_fitted) || self.settings.errors.sphere == 0.0 {
-            return None;
-        }
-        let all = self.placement.electrodes.iter();
-        let points: Vec<Vec3> = all.map(|e| self.placement.canonical(e.position_mm) * (1.0 / head.radius_mm)).collect();
-        let (sd, normal) = HeadErrors::sphere_of(&points)?;
-        Some((sd * self.settings.errors.sphere, normal))
+    fn head_errors(&self) -> &HeadErrors {
+        self.simulated.errors.get_or_init(|| {
+            let radius = self.placement.sphere.sphere.radius;
+            let errors = &self.settings.errors;
+            let point = |e: &Placed| self.placement.canonical(e.position_mm) * (1.0 / radius);
+            let head = self.head();
+            // The sphere is fitted to all electrodes, and off only where it was fitted.
+            let fitted = head.centre_is_fitted && head.radius_is_fitted && errors.sphere > 0.0;
+            let all: Vec<Vec3> = self.placement.electrodes.iter().map(point).collect();
+            let sphere = fitted.then(|| HeadErrors::sphere_of(&all)).flatten();
+            HeadErrors {
+                electrodes: errors.electrodes_mm / radius,
+                skull_ratio: errors.skull_ratio.filter(|_| HeadErrors::has_skull(&self.shells)),
+                sphere: sphere.map(|(sd, normal)| (sd * errors.sphere, normal)),
+                shells: self.shells.clone(),
+                points: self.placement.used().map(point).collect(),
+            }
+        })
     }
 
     /// Standard errors of centre (root mean square over the axes) and radius, in scalp radii.
     fn sphere_errors(&self) -> Option<[f64; 2]> {
-        let (sd, normal) = self.sphere_fit()?;
+        let (sd, normal) = self.head_errors().sphere.as_ref()?;
         let variance = |axis: usize| {
             let unit: Vec<f64> = (0..4).map(|i| if i == axis { 1.0 } else { 0.0 }).collect();
             sd * sd * normal.solve(&unit)[axis]
         };
         Some([((variance(0) + variance(1) + variance(2)) / 3.0).sqrt(), variance(3).sqrt()])
     }
+}
+
+/// Angle in degrees that the share [`LEVEL`] of the refitted moments stay within.
+fn turned(refits: &[Fit], fit: &Fit) -> f64 {
+    let angle = |one: &Fit| libm::atan2(one.moment.cross(fit.moment).norm(), one.moment.dot(fit.moment)).to_degrees();
+    let mut angles: Vec<f64> = refits.iter().map(angle).collect();
+    let Some(last) = angles.len().checked_sub(1) else { return 0.0 };
+    let at = (libm::ceil(LEVEL * angles.len() as f64) as usize).saturating_sub(1).min(last);
+    select(&mut angles, at)
 }
 
 /// Whether an ellipsoid reaches beyond a sphere about the origin: at the ends of its axes, or where it reaches farthest along

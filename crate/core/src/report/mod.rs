@@ -23,7 +23,7 @@ pub(crate) use summary::full_name;
 pub use summary::{Curve, Difference, GroupSummary, Member, MemberSummary, Questions, Summary};
 pub use trust::{
     Among, CauseReport, DrawnEllipsoid, NoiseOnly, Percentiles, PopulationReport, ReasonReport, RegionReport, Repeats,
-    Structure, Trust, TrustPopulation, TrustRegion, TrustVerdict, VerdictReport, rule, verdict_title,
+    Structure, Trust, TrustPopulation, TrustRegion, VerdictReport, rule,
 };
 pub use trust_settings::{ErrorSettings, Limits, NoiseSettings, SourceSettings};
 

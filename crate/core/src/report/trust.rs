@@ -237,18 +237,6 @@ impl VerdictReport {
     }
 }
 
-/// The word as people write it.
-pub fn verdict_title(word: Word) -> &'static str {
-    match word {
-        Word::LoneElectrode => "lone electrode",
-        Word::Edge => "edge",
-        Word::BelowTheBrain => "below the brain",
-        Word::Dipolar => "dipolar",
-        Word::Undecided => "undecided",
-        Word::NotDipolar => "not dipolar",
-    }
-}
-
 /// Of a map that is undecided because few single dipoles leave as much over.
 const SELDOM: &str =
     "Undecided: more is left over than with most simulated single dipoles, but a few of them leave as much.";
@@ -271,7 +259,7 @@ fn verdict_text(word: Word) -> &'static str {
             "Undecided: one equivalent dipole fits as well as with simulated single dipoles, but several sources often fit as well here."
         }
         Word::NotDipolar => {
-            "Not dipolar with this head and these electrodes: more is left over than with practically all simulated single dipoles."
+            "Not dipolar with this head and these electrodes: more is left over than the limit for simulated single dipoles allows."
         }
     }
 }
@@ -332,7 +320,7 @@ fn hint_text(hint: Hint) -> &'static str {
 #[derive(Clone, Debug, PartialEq, Serialize)]
 pub struct Trust {
     /// What the map may count as; absent until the populations that it depends on are there.
-    pub verdict: Option<TrustVerdict>,
+    pub verdict: Option<VerdictReport>,
     /// Where the dipole may be.
     pub region: TrustRegion,
     /// The populations that are there.
@@ -341,21 +329,6 @@ pub struct Trust {
     pub rule: String,
     /// What stands below all of it.
     pub cautions: [&'static str; 3],
-}
-
-/// A verdict in words.
-#[derive(Clone, Debug, PartialEq, Serialize)]
-pub struct TrustVerdict {
-    /// The verdict.
-    pub word: Word,
-    /// As people write it.
-    pub title: &'static str,
-    /// In a sentence.
-    pub sentence: String,
-    /// What speaks for it or for caution.
-    pub reasons: Vec<ReasonReport>,
-    /// What place and map hint at.
-    pub hints: Vec<HintReport>,
 }
 
 /// A region in words and as it is drawn: canonical axes, the scalp at radius 1.
@@ -370,7 +343,7 @@ pub struct TrustRegion {
     /// Refitted positions.
     pub cloud: Vec<Vec3>,
     /// The ellipsoid that holds 95 % of them.
-    pub ellipsoid: Option<DrawnEllipsoid>,
+    pub ellipsoid: DrawnEllipsoid,
     /// The same if the residual were independent noise.
     pub noise_only: Option<DrawnEllipsoid>,
     /// The residual's spatial structure.
@@ -466,20 +439,13 @@ impl Trust {
     pub fn new(
         map: &FittedMap,
         region: &RegionReport,
-        drawn: (Vec<Vec3>, Option<DrawnEllipsoid>, Option<DrawnEllipsoid>),
+        drawn: (Vec<Vec3>, DrawnEllipsoid, Option<DrawnEllipsoid>),
         verdict: Option<VerdictReport>,
         populations: &[(PopulationReport, Among)],
         rule: String,
         unit: MapUnit,
     ) -> Self {
         let (cloud, ellipsoid, noise_only) = drawn;
-        let word = |verdict: VerdictReport| TrustVerdict {
-            word: verdict.word,
-            title: verdict_title(verdict.word),
-            sentence: verdict.text,
-            reasons: verdict.reasons,
-            hints: verdict.hints,
-        };
         let mut notes = Vec::new();
         if region.reaches_boundary {
             notes.push("The ellipsoid reaches beyond the modelled brain; of a source there it says nothing.");
@@ -495,7 +461,7 @@ impl Trust {
             _ => "",
         };
         Self {
-            verdict: verdict.map(word),
+            verdict,
             region: TrustRegion {
                 sentence: format!(
                     "{doubt}When head, electrodes and map are off as assumed here, 95 % of refits lie in an ellipsoid of {} ml, {a} × {b} × {c} mm to each side of the position. {PUBLISHED}",
@@ -587,14 +553,17 @@ fn region_rows(region: &RegionReport, unit: Written) -> Vec<Row> {
 
 fn causes(region: &RegionReport, unit: Written) -> Vec<TrustCause> {
     let line = |cause: &CauseReport| {
-        let factor = if cause.cause == "noise" { unit.factor } else { 1.0 };
-        let size = cause.size.iter().map(|size| given(significant(factor * size, 2).parse().unwrap_or(*size)));
-        let size: Vec<String> = size.collect();
-        let (label, size) = match (cause.cause, &size[..]) {
-            ("electrodes", [mm]) => ("Electrodes misplaced", format!("{mm} mm")),
-            ("skull", [least, most]) => ("Conductivity of the skull", format!("brain {least} to {most} times")),
-            ("sphere", [centre, radius]) => ("Sphere", format!("centre {centre} mm, radius {radius} mm")),
-            ("noise", [sd]) => ("Noise as drawn for the refits", format!("{sd} {}", unit.name)),
+        let (label, size) = match (cause.cause, &cause.size[..]) {
+            ("electrodes", [mm]) => ("Electrodes misplaced", format!("{} mm", given(*mm))),
+            ("skull", [least, most]) => {
+                ("Conductivity of the skull", format!("brain {} to {} times", given(*least), given(*most)))
+            }
+            ("sphere", [centre, radius]) => {
+                ("Sphere", format!("centre {} mm, radius {} mm", significant(*centre, 2), significant(*radius, 2)))
+            }
+            ("noise", [sd]) => {
+                ("Noise as drawn for the refits", format!("{} {}", significant(unit.factor * sd, 2), unit.name))
+            }
             _ => ("", String::new()),
         };
         TrustCause { cause: cause.cause, label, size, sd: tenths(cause.sd_mm) }
