@@ -109,7 +109,7 @@ interface LimitSettings {
   coverageDeg?: number | null;
 }
 
-type VerdictWord = "lone-electrode" | "edge" | "below-the-brain" | "dipolar" | "undecided" | "not-dipolar";
+type VerdictWord = "lone-electrode" | "edge" | "below-the-brain" | "dipolar" | "paired" | "undecided" | "not-dipolar";
 
 type PopulationKind = "noise" | "one-dipole" | "two-dipoles" | "five-dipoles" | "twenty-dipoles" | "hundred-dipoles";
 
@@ -159,6 +159,86 @@ interface Trust {
   /** Head, depth, number and orientation: stands beside every figure of populations. */
   rule: string;
   cautions: string[];
+}
+
+type ExplanationKind = "single" | "second-minimum" | "mirrored-pair" | "two-dipoles";
+
+/** What else reproduces a map. The first of `kinds` is the single dipole, for comparison. */
+interface Alternatives {
+  sentence: string;
+  kinds: {
+    kind: ExplanationKind;
+    label: string;
+    sentence: string;
+    decision: "reference" | "preferred" | "not-decidable" | "worse" | "refused";
+    /** RV, adjusted RV in percent, parameters, distance in mm, F, difference of BIC, share of single dipoles in percent. */
+    cells: string[];
+    /** In the axes and the unit of a figure. */
+    dipoles: { position: number[]; direction: number[] }[];
+  }[];
+  alt: string;
+  notes: string[];
+  /** Anew: a mirrored pair may stand; null without reference populations. */
+  verdict: Trust["verdict"];
+}
+
+/** Each electrode left out in turn, the largest shift first: shift in mm, residual variance without it in percent. */
+interface Influence {
+  sentence: string;
+  electrodes: { label: string; shift: string; rv: string; shift_mm: number; carries: boolean }[];
+  notes: string[];
+}
+
+/** The fit under other heads and electrodes. `none`: why a change does not apply; `rv_change` as a fraction. */
+interface WhatIf {
+  sentence: string;
+  rows: {
+    change: string;
+    label: string;
+    shift: string;
+    /** Change of depth in mm, signed: deeper is positive. */
+    depth: string;
+    rv: string;
+    shift_mm: number;
+    rv_change: number;
+    none: string | null;
+  }[];
+  notes: string[];
+}
+
+type SliceView = "above" | "behind" | "left";
+
+/**
+ * Residual variance over the brain in three slices through a point; in the axes and the unit of a figure. The rasters cover
+ * the square from -`brain` to `brain`, first row at the top, NaN outside. u runs to the right and v upwards: x and y seen
+ * from above, x and z from behind, -y and z from the left.
+ */
+interface Landscape {
+  at: number[];
+  best: number[];
+  size: number;
+  /** Radius of the innermost shell. */
+  brain: number;
+  slices: { view: SliceView; rv: Float32Array; contours: ContourLine[]; alt: string }[];
+  /** The region's level, then residual variance and 1 %. */
+  levels: { rv: number; label: string }[];
+  sentence: string;
+}
+
+/** The dipole at a place chosen by hand, moved into the region of sources; its moment is fitted there. */
+interface Probe {
+  at: number[];
+  direction: number[];
+  rv: number;
+  sentence: string;
+  rows: SheetRow[];
+  picture: Picture | null;
+}
+
+/** Electrodes that hold the largest residual of many maps; none where none stands out. */
+interface Suspects {
+  sentence: string;
+  electrodes: { label: string; share: string; count: number; sentence: string }[];
 }
 
 /** Two numbers for each draw: residual variance; eccentricity, negative at the boundary. */

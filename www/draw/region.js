@@ -101,6 +101,7 @@ export function legendMarks(kind) {
 const VERDICT_MARKS = {
   dipolar: ["", "M2 8a6 6 0 1 0 12 0a6 6 0 1 0-12 0Z"],
   undecided: ["M2 8a6 6 0 1 0 12 0a6 6 0 1 0-12 0Z", "M8 2a6 6 0 0 0 0 12Z"],
+  paired: ["M8 1V15", "M1.5 8a2.5 2.5 0 1 0 5 0a2.5 2.5 0 1 0-5 0ZM9.5 8a2.5 2.5 0 1 0 5 0a2.5 2.5 0 1 0-5 0Z"],
   "not-dipolar": ["M2 8a6 6 0 1 0 12 0a6 6 0 1 0-12 0Z", ""],
   edge: ["M14 1V15", "M4 8a4.5 4.5 0 1 0 9 0a4.5 4.5 0 1 0-9 0Z"],
   "below-the-brain": ["M1 3H15", "M3.5 10a4.5 4.5 0 1 0 9 0a4.5 4.5 0 1 0-9 0Z"],

@@ -139,6 +139,11 @@ export const TERMS = [
     line: "Simulated maps of noise, one, two, five, twenty or a hundred dipoles, for the same electrodes and head.",
   },
   {
+    code: "mirrored-pair",
+    words: ["mirrored pair", "paired"],
+    line: "Two dipoles at mirrored places, left and right of the head’s mid-plane, each with a moment of its own.",
+  },
+  {
     code: "left-over",
     words: ["left-over map", "left over"],
     line: "What the dipole does not reproduce: measured less one dipole, electrode by electrode.",

@@ -17,6 +17,7 @@ export const TRUST_WORDS = {
   verdict: "Verdict",
   "verdict.all": "all",
   "verdict.dipolar": "dipolar",
+  "verdict.paired": "paired",
   "verdict.undecided": "undecided",
   "verdict.not-dipolar": "not dipolar",
   "verdict.edge": "edge",

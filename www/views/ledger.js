@@ -8,7 +8,7 @@ const REGIONS = ["front", "middle", "back"].flatMap((third) =>
 );
 
 /** Verdicts, the most trusted first. @type {VerdictWord[]} */
-export const VERDICTS = ["dipolar", "undecided", "not-dipolar", "edge", "below-the-brain", "lone-electrode"];
+export const VERDICTS = ["dipolar", "paired", "undecided", "not-dipolar", "edge", "below-the-brain", "lone-electrode"];
 
 /** @typedef {"number" | "rv" | "depth" | "strength" | "region" | "verdict"} LedgerOrder */
 /** @typedef {"verdict" | "band" | "region" | "none"} LedgerGrouping */
