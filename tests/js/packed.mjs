@@ -1,4 +1,5 @@
 // Unpacks what comes as JSON on standard input, then damages it, and prints what came of it.
+import { putTogether } from "../../www/engine/streams.js";
 import { LOADING } from "../../www/text/loading.js";
 import { unpackedLzma } from "../../www/text/lzma.js";
 import { unpacked } from "../../www/text/packed.js";
@@ -40,6 +41,20 @@ for (const { bytes, text } of cases) {
     if (turn % 5 === 0) refuses("cut", packed.slice(0, Math.floor((turn * packed.length) / 50)));
   }
 }
+
+// A module by hand, which the build tool's tests take apart.
+const names = "head tail opcodes variables read written offsets i32 i64 calls branches tables bytes blocks other";
+const streams = new Map(names.split(" ").map((name) => [name, []]));
+const module = [];
+const hex = (text) => text.split(" ").filter(Boolean).map((byte) => parseInt(byte, 16));
+for (const line of readFileSync(new URL("../data/streams.tsv", import.meta.url), "utf8").split("\n").slice(1, -1)) {
+  const [name, inside, apart] = line.split("\t");
+  module.push(...hex(inside));
+  streams.get(name)?.push(...hex(apart));
+}
+const lengths = Uint32Array.of(module.length, ...[...streams.values()].map(({ length }) => length));
+const put = putTogether(Uint8Array.of(...new Uint8Array(lengths.buffer), ...[...streams.values()].flat()));
+console.log(Buffer.from(put).equals(Buffer.from(module)) ? "a module put together" : `not the module: ${put}`);
 console.log(
   `${equal} unpacked, ${refused.damaged} of ${tried.damaged} damaged ones refused, ${refused.cut} of ${tried.cut} cut off refused`,
 );

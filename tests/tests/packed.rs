@@ -35,5 +35,8 @@ fn the_page_unpacks_what_was_packed_and_refuses_what_is_damaged() {
     }
     let printed =
         Node::with_engine().run("js/packed.mjs", &[], &json!(cases).to_string()).unwrap_or_else(|why| panic!("{why}"));
-    assert_eq!(printed.trim(), "30 unpacked, 500 of 500 damaged ones refused, 300 of 300 cut off refused");
+    assert_eq!(
+        printed.trim(),
+        "a module put together\n30 unpacked, 500 of 500 damaged ones refused, 300 of 300 cut off refused"
+    );
 }

@@ -7,6 +7,7 @@ use crate::markup::markup;
 use crate::notices::notices;
 use crate::packed::packed;
 use crate::page::{LIMIT, Parts, page};
+use crate::streams::taken_apart;
 use crate::wasm::{Compiled, compile};
 use crate::workspace::{Workspace, files, read};
 use anyhow::{Context, Result, bail};
@@ -34,10 +35,12 @@ pub struct Dist {
 
 /// Builds and writes it all, and tells the sizes.
 pub fn build(workspace: &Workspace) -> Result<Dist> {
-    let compiled = compile(workspace)?;
+    let mut compiled = compile(workspace)?;
+    let streams;
+    (streams, compiled.wasm) = taken_apart(&compiled.wasm)?;
     let www = workspace.root.join("www");
     let modules = Modules::read(&www).context("in www")?;
-    let carried = packed(&compiled.wasm)?;
+    let carried = packed(&streams)?;
     let loader = loader_script(&modules.join("load.js")?)?;
     let (style, answer_style) = styles(&www.join("style"))?;
     let answer = read(&www.join("answer.html"))?;

@@ -19,6 +19,7 @@ mod sealed;
 mod serve;
 mod stamp;
 mod steps;
+mod streams;
 mod tools;
 mod wasm;
 mod workspace;
