@@ -241,6 +241,68 @@ interface Suspects {
   electrodes: { label: string; share: string; count: number; sentence: string }[];
 }
 
+/** A response over time. What a time point lacks is null; positions are in the axes and the unit of a figure. */
+interface TimeCourse {
+  times: number[];
+  unit: string;
+  gfp: (number | null)[];
+  gfp_unit: string;
+  rv: (number | null)[];
+  positions: (number[] | null)[];
+  strengths: (number | null)[];
+  strength_unit: string;
+  instants: { code: "onset" | "mid-rise" | "peak"; index: number; label: string }[];
+  /** The field power up to which a map is near the noise. */
+  floor: { gfp: number; sentence: string } | null;
+  /** In the unit of the maps. */
+  noise: { sd: number; sentence: string } | null;
+  sentence: string;
+  notes: string[];
+}
+
+/** One position over an interval; `strength` along the main axis, signed. */
+interface FixedDipole {
+  sentence: string;
+  rows: SheetRow[];
+  position: number[];
+  direction: number[];
+  rv: (number | null)[];
+  strength: number[];
+  strength_unit: string;
+  at_boundary: boolean;
+}
+
+interface GroupsRequest {
+  members: {
+    name: string;
+    subject?: string | null;
+    dipoles: { map: number; position: number[]; direction: number[]; rv: number }[];
+  }[];
+  groups?: number | null;
+  /** How far apart dipoles at one place count whose axes cross at a right angle; 30. */
+  axisMm?: number;
+}
+
+/** Dipoles of several people in one head, largest group first. */
+interface Groups {
+  count: number;
+  /** Mean silhouettes. */
+  criterion: { groups: number; value: number; text: string }[];
+  sentence: string;
+  groups: {
+    /** Place of the member and of the dipole among its. */
+    members: [number, number][];
+    subjects: number;
+    position: number[];
+    axis: number[];
+    ellipsoid: Ellipsoid | null;
+    /** Dipoles, people, position in mm, spread in mm and degrees, mean residual variance in percent. */
+    cells: string[];
+    sentence: string;
+  }[];
+  notes: string[];
+}
+
 /** Two numbers for each draw: residual variance; eccentricity, negative at the boundary. */
 interface Populations {
   key: string;
@@ -375,6 +437,8 @@ type ReportMap = FittedMap | UnfittedMap;
  */
 interface Thumbnails {
   size: number;
+  /** Angle from the top of the head at the rim of the disc. */
+  rim_degrees: number;
   outline: Float32Array;
   measured: Float32Array[];
   limit: number[];
@@ -616,6 +680,10 @@ interface GlueStudy {
   trust(index: number): Trust | null;
   verdicts(first: number, last: number, milliseconds: number): (VerdictWord | null)[];
   sheet(index: number): Sheet;
+  /** Null unless the maps are time points. */
+  response(): TimeCourse | null;
+  /** Of the time points from `first` to `last`, both included. */
+  fixed(first: number, last: number): FixedDipole | null;
   /** The same tables under other settings; nothing is read again. */
   with(settings: EngineSettings): GlueStudy;
   /** Other tables; what was prepared is used again where head and electrodes are the same. */
@@ -635,6 +703,9 @@ interface Glue {
   /** Units that depend on the maps' are named together where none is given. */
   columns(unit?: MapUnit): TableColumn[];
   summary(request: SummaryRequest): Summary;
+  groups(request: GroupsRequest): Groups;
+  /** The mean of rasters with the angles at their rims, NaN where one is; signs turned to agree. */
+  meanRaster(rasters: [Float32Array, number][], size: number): Float32Array;
   compare(list: object[], common?: object): object;
   Comparison: new () => {
     add(name: string, subject: string | null | undefined, information: number | null | undefined, study: GlueStudy): void;
@@ -703,6 +774,10 @@ interface Study {
   /** From `first` on, before `last`, for about so long; null for a map that cannot be fitted. */
   verdicts(first: number, last: number, milliseconds: number): (VerdictWord | null)[];
   sheet(index: number): Sheet;
+  /** Null unless the maps are time points. */
+  response(): TimeCourse | null;
+  /** Of the time points from `first` to `last`, both included. */
+  fixed(first: number, last: number): FixedDipole | null;
 }
 
 interface Engine {
@@ -715,6 +790,9 @@ interface Engine {
   columns(unit?: MapUnit): TableColumn[];
   /** Near-dipolar shares, from numbers alone. */
   summary(request: SummaryRequest): Summary;
+  groups(request: GroupsRequest): Groups;
+  /** The mean of rasters with the angles at their rims, NaN where one is; signs turned to agree. */
+  meanRaster(rasters: [Float32Array, number][], size: number): Float32Array;
   compare(list: object[], common?: object): object;
   /** The same from open studies. */
   compareStudies(list: ComparedStudy[], settings?: ComparisonSettings): object;

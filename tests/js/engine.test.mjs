@@ -649,3 +649,37 @@ test("populations can be drawn in pieces elsewhere and handed over", () => {
   assert.equal(study.with({ ...settings, exclude: ["Cz"] }).trust(0).verdict, null);
   assert.deepEqual(study.with({ ...settings, polarity: "declared" }).trust(0).verdict, trust.verdict);
 });
+
+test("time points give a response, dipoles of several people groups", () => {
+  const times = engine.open({ electrodes, maps, settings: { columnsAre: "time-points" } });
+  const response = times.response();
+  assertPlain(response, "response");
+  assert.deepEqual([response.unit, response.times.length, response.gfp.length], ["samples", times.count, times.count]);
+  assert.deepEqual(response.rv, [...Array(times.count).keys()].map((index) => times.fit(index).residual_variance));
+  const fixed = times.fixed(0, 2);
+  assertPlain(fixed, "fixed");
+  assert.equal(fixed.rv.length, 3);
+  assert.ok(fixed.rv.every((rv, index) => rv >= response.rv[index] - 1e-12));
+  assert.equal(thrown(() => times.fixed(0, times.count)).code, "map-index");
+  const study = engine.open({ electrodes, maps, settings: { columnsAre: "components" } });
+  assert.deepEqual([study.response(), study.fixed(0, 1)], [null, null]);
+  const numbers = study.fits();
+  const dipoles = [...Array(study.count).keys()].map((map) => ({
+    map,
+    position: [...numbers.slice(8 * map, 8 * map + 3)],
+    direction: [...numbers.slice(8 * map + 3, 8 * map + 6)],
+    rv: numbers[8 * map + 6],
+  }));
+  const members = ["s1", "s2", "s3"].map((subject) => ({ name: "ICA", subject, dipoles }));
+  const groups = engine.groups({ members });
+  assertPlain(groups, "groups");
+  assert.ok(groups.groups.every((group) => group.subjects === 3 && group.members.length % 3 === 0));
+  assert.equal(engine.groups({ members, groups: 1 }).count, 1);
+  assert.equal(thrown(() => engine.groups({ members, groups: 25 })).code, "setting-range");
+  assert.equal(thrown(() => engine.groups({ members: [{ name: "x", dipoles: [{ map: 0 }] }] })).code, "settings-unknown");
+  const { measured, rim_degrees, size } = study.thumbnails([0, 0], 16);
+  const turned = measured[1].map((value) => -value);
+  const mean = engine.meanRaster([[measured[0], rim_degrees], [turned, rim_degrees]], size);
+  assert.deepEqual(mean, measured[0]);
+  assert.equal(thrown(() => engine.meanRaster([[measured[0], rim_degrees]], 17)).code, "settings-unknown");
+});

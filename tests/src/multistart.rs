@@ -38,7 +38,19 @@ impl MultiStart {
     /// The smallest residual variance found and where, in scalp radii.
     pub fn best(&self, map: &[f64]) -> (f64, Vec3) {
         let map = unit(map);
-        let mut seeds: Vec<(f64, Vec3)> = self.grid.iter().map(|(p, basis)| (left_over(basis, &map), *p)).collect();
+        self.least(&|basis| left_over(basis, &map))
+    }
+
+    /// The smallest pooled residual variance of several maps with one position, and where.
+    pub fn best_common(&self, maps: &[&[f64]]) -> (f64, Vec3) {
+        let power = |map: &[f64]| inner(&centred(map), &centred(map));
+        let all: f64 = maps.iter().map(|map| power(map)).sum();
+        let weighted: Vec<(Vec<f64>, f64)> = maps.iter().map(|map| (unit(map), power(map) / all)).collect();
+        self.least(&|basis| weighted.iter().map(|(map, weight)| weight * left_over(basis, map)).sum())
+    }
+
+    fn least(&self, left: &dyn Fn(&[Vec<f64>; 3]) -> f64) -> (f64, Vec3) {
+        let mut seeds: Vec<(f64, Vec3)> = self.grid.iter().map(|(p, basis)| (left(basis), *p)).collect();
         seeds.sort_by(|a, b| a.0.total_cmp(&b.0));
         let mut apart: Vec<(f64, Vec3)> = Vec::new();
         for seed in seeds {
@@ -47,10 +59,10 @@ impl MultiStart {
             }
         }
         let mut near: Vec<(f64, Vec3)> =
-            apart.into_iter().map(|seed| self.descend(seed, STEP / 2.0, 4e-3, &map)).collect();
+            apart.into_iter().map(|seed| self.descend(seed, STEP / 2.0, 4e-3, left)).collect();
         near.sort_by(|a, b| a.0.total_cmp(&b.0));
         near.truncate(FINALISTS);
-        let ends = near.into_iter().map(|seed| self.descend(seed, 2e-3, 5e-5, &map));
+        let ends = near.into_iter().map(|seed| self.descend(seed, 2e-3, 5e-5, left));
         ends.min_by(|a, b| a.0.total_cmp(&b.0)).expect("there are seeds")
     }
 
@@ -59,7 +71,7 @@ impl MultiStart {
         left_over(&self.basis(position), &unit(map))
     }
 
-    fn descend(&self, start: (f64, Vec3), step: f64, end: f64, map: &[f64]) -> (f64, Vec3) {
+    fn descend(&self, start: (f64, Vec3), step: f64, end: f64, left: &dyn Fn(&[Vec<f64>; 3]) -> f64) -> (f64, Vec3) {
         let (mut value, mut position) = start;
         let mut step = step;
         let mut last = Vec3::ZERO;
@@ -72,7 +84,7 @@ impl MultiStart {
                     continue;
                 }
                 let next = self.within(position + offset);
-                let reached = left_over(&self.basis(next), map);
+                let reached = left(&self.basis(next));
                 if reached < value {
                     (last, position, value, moved) = (next - position, next, reached, true);
                 }

@@ -181,6 +181,8 @@ export function makeEngine(compiled, keeps = true) {
       trust: (index) => use((opened) => opened.trust(index)),
       verdicts: (first, last, milliseconds) => use((opened) => opened.verdicts(first, last, milliseconds)),
       sheet: (index) => use((opened) => opened.sheet(index)),
+      response: () => use((opened) => opened.response()),
+      fixed: (first, last) => use((opened) => opened.fixed(first, last)),
     };
   }
 
@@ -202,6 +204,8 @@ export function makeEngine(compiled, keeps = true) {
         return comparison.finish(settings);
       }),
     summary: (request) => call((current) => current.summary(request)),
+    groups: (request) => call((current) => current.groups(request)),
+    meanRaster: (rasters, size) => call((current) => current.meanRaster(rasters, size)),
     columns: (unit) => call((current) => current.columns(unit)),
     choices: () => call((current) => current.choices()),
     program: () => call((current) => current.program()),

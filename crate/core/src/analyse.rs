@@ -1,6 +1,7 @@
 //! The whole way of a table of maps in one call.
 
 mod compare;
+mod response;
 mod tables;
 mod trust;
 
@@ -95,6 +96,8 @@ pub struct Study {
 pub struct Thumbnails {
     /// Rows and columns of each.
     pub size: usize,
+    /// Angle from the top of the head at the rim of the disc.
+    pub rim_degrees: f64,
     /// Hull of the used electrodes on the disc.
     pub outline: Vec<[f64; 2]>,
     /// Values over the map's limit as in a [`Picture`]; NaN beyond what is painted, and all over for a map without values.
@@ -354,8 +357,13 @@ impl Study {
             None => Raster::new(spline, electrodes(), size),
         };
         let raster = kept.insert(raster);
-        let mut thumbnails =
-            Thumbnails { size, outline: raster.outline().to_vec(), measured: Vec::new(), limit: Vec::new() };
+        let mut thumbnails = Thumbnails {
+            size,
+            rim_degrees: raster.rim_degrees(),
+            outline: raster.outline().to_vec(),
+            measured: Vec::new(),
+            limit: Vec::new(),
+        };
         for &index in indexes {
             let (pixels, limit) = match self.values(index).ok().and_then(|values| normalise(&values)) {
                 Some((map, limit)) => {

@@ -280,6 +280,8 @@ codes! {
     PopulationsLacking = "populations-lacking",
     /// Error: two decompositions have too few electrodes in common to compare their maps.
     ElectrodesUncommon = "electrodes-uncommon",
+    /// Error: more dipoles than are grouped.
+    DipolesTooMany = "dipoles-too-many",
     /// Note: x right, y front, z up was assumed.
     AxesAssumed = "axes-assumed",
     /// Note: parts of a file that are no tables.

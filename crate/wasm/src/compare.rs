@@ -2,9 +2,9 @@
 
 use crate::wire::{Inputs, keys, misunderstood, part, plain, set, settings_object, thrown, thrown_within};
 use crate::{Inner, Study};
-use inward_core::report::{Member, Questions, Summary};
+use inward_core::report::{Groups, GroupsRequest, Member, Questions, Summary};
 use inward_core::{Decomposition, Settings, Vec3};
-use js_sys::{Array, Object};
+use js_sys::{Array, Float32Array, Object};
 use serde::de::DeserializeOwned;
 use wasm_bindgen::prelude::*;
 
@@ -19,6 +19,29 @@ const QUESTIONS: [&str; 4] = ["at", "seed", "draws", "pairs"];
 pub fn summary(request: JsValue) -> Result<JsValue, JsValue> {
     let members: Vec<Member> = of(&request, "members")?.unwrap_or_default();
     plain(&Summary::new(&members, &questions(&request)?).map_err(|error| thrown(&error))?)
+}
+
+/// Dipoles of `{ members, groups, axisMm }` in groups by place and axis.
+#[wasm_bindgen]
+pub fn groups(request: JsValue) -> Result<JsValue, JsValue> {
+    let unknown = |_| thrown(&Settings::unknown(misunderstood("members")));
+    let request: GroupsRequest = serde_wasm_bindgen::from_value(request).map_err(unknown)?;
+    plain(&Groups::new(&request).map_err(|error| thrown(&error))?)
+}
+
+/// The mean of rasters as `thumbnails` gives them, `[[raster, rim_degrees], …]`, signs turned so that they agree.
+#[wasm_bindgen(js_name = meanRaster)]
+pub fn mean_raster(list: JsValue, size: usize) -> Result<Vec<f32>, JsValue> {
+    let wrong = || thrown(&Settings::unknown(misunderstood("rasters")));
+    let list = list.dyn_ref::<Array>().filter(|list| list.length() > 0).ok_or_else(wrong)?;
+    let one = |pair: JsValue| {
+        let raster = part(&pair, "0").dyn_into::<Float32Array>().ok()?.to_vec();
+        let rim = part(&pair, "1").as_f64().filter(|rim| *rim > 0.0)?;
+        (raster.len() == size.checked_mul(size)?).then_some((raster, rim))
+    };
+    let rasters: Vec<(Vec<f32>, f64)> = list.iter().map(one).collect::<Option<_>>().ok_or_else(wrong)?;
+    let rasters: Vec<(&[f32], f64)> = rasters.iter().map(|(raster, rim)| (raster.as_slice(), *rim)).collect();
+    Ok(inward_core::scene::mean_raster(&rasters, size))
 }
 
 /// The comparison of `[{ name, maps, subject?, electrodes?, files?, head?, settings?, information? }, …]` under

@@ -219,6 +219,17 @@ impl Study {
         plain(&self.0.assess(index, &what).map_err(|error| thrown(&error))?)
     }
 
+    /// The response over time; `null` unless the maps are time points.
+    pub fn response(&self) -> Result<JsValue, JsValue> {
+        plain(&self.0.response())
+    }
+
+    /// One position for the time points from `first` to `last`, both included; `null` unless the maps are time points.
+    pub fn fixed(&self, first: JsValue, last: JsValue) -> Result<JsValue, JsValue> {
+        let [first, last] = [first, last].map(|index| wire::index(&index, self.0.count()));
+        plain(&self.0.fixed(first?, last?).map_err(|error| thrown(&error))?)
+    }
+
     /// The answer for one map in words, numbers and pictures; `null` for a map that cannot be fitted.
     pub fn sheet(&self, index: JsValue) -> Result<JsValue, JsValue> {
         let index = wire::index(&index, self.0.count())?;

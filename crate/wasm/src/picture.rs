@@ -56,6 +56,7 @@ pub(crate) fn small(thumbnails: &Thumbnails) -> Object {
     let measured = thumbnails.measured.iter().map(|raster| JsValue::from(Float32Array::from(&raster[..])));
     object(&[
         ("size", (thumbnails.size as u32).into()),
+        ("rim_degrees", thumbnails.rim_degrees.into()),
         ("outline", points(&thumbnails.outline).into()),
         ("measured", measured.collect::<Array>().into()),
         ("limit", thumbnails.limit.iter().map(|limit| JsValue::from(*limit)).collect::<Array>().into()),

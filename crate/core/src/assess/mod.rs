@@ -1,11 +1,13 @@
 //! What fits are worth: residual variance adjusted for the degrees of freedom, how many of many are near-dipolar, how a map
-//! stands among simulated ones and what it may count as.
+//! stands among simulated ones, what it may count as, and which dipoles of several people lie together.
 
+mod grouping;
 mod origin;
 mod reference;
 mod share;
 mod verdict;
 
+pub use grouping::{CANONICAL_RADIUS_MM, Grouping, MOST_GROUPS};
 pub use origin::{Hint, hints};
 pub use reference::Reference;
 pub use share::Sample;

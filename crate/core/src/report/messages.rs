@@ -222,6 +222,9 @@ pub fn message(finding: &Finding) -> String {
             value("most")
         ),
         Code::PopulationsLacking => format!("There are no reference maps of the kind “{}” yet.", value("kind")),
+        Code::DipolesTooMany => {
+            format!("There are {} dipoles to group; at most {} are.", value("found"), value("most"))
+        }
         Code::AxesAssumed => {
             let assumed = "Axes were assumed: x to the right, y to the front, z up.";
             match finding.value("named") {
@@ -553,6 +556,7 @@ pub fn hint(code: Code) -> &'static str {
         Code::PopulationsLacking => {
             "Draw the population of each kind and hand it over first, or ask for the assessment, which draws them."
         }
+        Code::DipolesTooMany => "Lower the residual variance up to which dipoles are taken, or leave recordings out.",
         _ => "",
     }
 }

@@ -207,7 +207,7 @@ fn sentence(map: &FittedMap, head: &HeadReport) -> String {
 /// Stands beside every share.
 const CAUTION: &str = "A low residual variance alone does not show that a map has a single source.";
 
-fn rows(map: &FittedMap, head: &HeadReport, used: usize, placed: usize) -> Vec<Row> {
+pub(super) fn rows(map: &FittedMap, head: &HeadReport, used: usize, placed: usize) -> Vec<Row> {
     let dipole = &map.dipole;
     let arbitrary = dipole.polarity == Polarity::Arbitrary;
     let mut rows = vec![

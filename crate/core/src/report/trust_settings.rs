@@ -162,7 +162,7 @@ pub(super) fn check(
     limits.coverage_deg.map_or(Ok(()), |angle| within("limits.coverageDeg", angle, 1.0..=180.0))
 }
 
-fn within(setting: &str, value: f64, range: RangeInclusive<f64>) -> Result<(), Error> {
+pub(super) fn within(setting: &str, value: f64, range: RangeInclusive<f64>) -> Result<(), Error> {
     if range.contains(&value) {
         return Ok(());
     }

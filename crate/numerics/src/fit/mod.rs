@@ -4,6 +4,7 @@
 //! best moment solves a linear problem, so that only three coordinates are searched. A grid of positions gives separate
 //! starts, Newton steps with exact derivatives refine them inside the ball of allowed sources, and the best one stands.
 
+mod common;
 mod grid;
 mod objective;
 mod profile;
@@ -13,8 +14,9 @@ mod tangent;
 use crate::forward::{Field, LeadField, along};
 use crate::math::lanes::splat3;
 use crate::math::{Lanes, Single, Vec3, centre, dot, mean};
+pub use common::Common;
 use grid::{Explained, Grid};
-use objective::Objective;
+use objective::{Objective, Surface};
 pub use profile::Profile;
 use refine::{DOUBLE, Precision, Region, SINGLE, least, refine};
 pub use tangent::Tangent;
@@ -114,32 +116,36 @@ impl Fitter {
         fits.collect()
     }
 
+    fn search(&self, map: &[f64], explained: Explained) -> Option<Fit> {
+        let mut rough = Objective::new(&self.rough, map);
+        let mut exact = Objective::new(self.field.field(), map);
+        let best = self.descend(&mut rough, &mut exact, explained)?;
+        let evaluations = self.grid.count() + rough.evaluations() + exact.evaluations();
+        Some(Fit { evaluations, ..best })
+    }
+
     /// Refines the starts roughly, then with all digits what may be the best of them.
-    fn search(&self, map: &[f64], mut explained: Explained) -> Option<Fit> {
+    fn descend(&self, surface: &mut dyn Surface, exact: &mut dyn Surface, mut explained: Explained) -> Option<Fit> {
         let region = Region { reach: self.field.reach(), step: self.grid.step() };
         let starts = self.grid.starts(&mut explained, STARTS);
         // Minima whose order the rough lead field may have wrong are not given up for one another.
         let slack = SINGLE.slack + 4.0 * self.field.rough_images().error_bound();
         let rough = Precision { slack, ..SINGLE };
-        let mut surface = Objective::new(&self.rough, map);
         let mut minima: Vec<Fit> = Vec::with_capacity(STARTS);
         for start in &starts {
             // The grid is so dense that no minimum lies far below the points around it.
             if START_OVER_MINIMUM * start.left_over <= least(&minima) + slack {
-                minima.extend(refine(&mut surface, start.position, region, rough, &minima));
+                minima.extend(refine(surface, start.position, region, rough, &minima));
             }
         }
         let most = least(&minima) + slack;
         let near = minima.iter().filter(|minimum| minimum.residual_variance <= most).map(|minimum| minimum.position);
-        let mut exact = Objective::new(self.field.field(), map);
         let mut fits: Vec<Fit> = Vec::with_capacity(1);
         // Without a rough minimum the starts themselves.
         for position in near.chain(starts.iter().map(|start| start.position).filter(|_| minima.is_empty())) {
-            fits.extend(refine(&mut exact, position, region, DOUBLE, &fits));
+            fits.extend(refine(exact, position, region, DOUBLE, &fits));
         }
-        let best = fits.into_iter().reduce(Fit::better)?;
-        let evaluations = self.grid.count() + surface.evaluations() + exact.evaluations();
-        Some(Fit { evaluations, ..best })
+        fits.into_iter().reduce(Fit::better)
     }
 
     /// The minimum that a search from this position leads to, with the precision of searches for starts: where a simulated

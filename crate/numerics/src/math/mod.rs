@@ -3,6 +3,7 @@
 mod assignment;
 mod autocorrelation;
 mod cholesky;
+mod cluster;
 mod ellipsoid;
 pub mod lanes;
 mod least_squares;
@@ -17,6 +18,7 @@ mod vec3;
 pub use assignment::assignment;
 pub use autocorrelation::{Autocorrelation, neighbours};
 pub use cholesky::Cholesky;
+pub use cluster::{Hierarchy, silhouettes};
 pub use ellipsoid::Ellipsoid;
 pub use lanes::{Double, Lanes, Single};
 pub use least_squares::least_squares;

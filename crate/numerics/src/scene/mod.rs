@@ -9,7 +9,7 @@ mod spline;
 pub use contour::Contour;
 pub use disc::DiscPoint;
 pub use picture::{Extremes, Layer, Picture, PictureElectrode, Ring};
-pub use raster::Raster;
+pub use raster::{Raster, mean_raster};
 pub use spline::Spline;
 
 use contour::contours;
