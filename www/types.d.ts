@@ -679,6 +679,13 @@ interface GlueStudy {
   keepPopulation(kind: PopulationKind, numbers: Float64Array): void;
   trust(index: number): Trust | null;
   verdicts(first: number, last: number, milliseconds: number): (VerdictWord | null)[];
+  alternatives(index: number): Alternatives | null;
+  influence(index: number): Influence | null;
+  whatIf(index: number): WhatIf | null;
+  landscape(index: number, at?: Float64Array): Landscape | null;
+  probe(index: number, at: Float64Array, picture: boolean): Probe | null;
+  unshared(first: number, last: number, milliseconds: number): Float32Array;
+  suspects(unshared: Float32Array): Suspects | null;
   sheet(index: number): Sheet;
   /** Null unless the maps are time points. */
   response(): TimeCourse | null;
@@ -773,6 +780,17 @@ interface Study {
   trust(index: number): Trust | null;
   /** From `first` on, before `last`, for about so long; null for a map that cannot be fitted. */
   verdicts(first: number, last: number, milliseconds: number): (VerdictWord | null)[];
+  alternatives(index: number): Alternatives | null;
+  influence(index: number): Influence | null;
+  whatIf(index: number): WhatIf | null;
+  /** Three slices through a place in scalp radii, or through the best one. */
+  landscape(index: number, at?: number[]): Landscape | null;
+  /** The map with its dipole at a place by hand. */
+  probe(index: number, at: number[], picture: boolean): Probe | null;
+  /** What `suspects` rests on, for maps from `first` on, before `last`, for about so long: as many numbers each as electrodes are used. */
+  unshared(first: number, last: number, milliseconds: number): Float32Array;
+  /** Null for fewer than ten maps. */
+  suspects(unshared: Float32Array): Suspects | null;
   sheet(index: number): Sheet;
   /** Null unless the maps are time points. */
   response(): TimeCourse | null;

@@ -119,7 +119,7 @@ fn profile_holds_the_truth(count: usize) {
             let noise = unit(draw.noise(count));
             add(&mut map, &noise, decibels);
             let fit = bench.fitter.fit(&map).unwrap();
-            bench.fitter.residual_variance_at(&map, position).unwrap() <= fit.residual_variance * factor
+            bench.fitter.held(&map, position).unwrap().0 <= fit.residual_variance * factor
         });
         let share = held.count() as f64 / f64::from(trials);
         println!("{count} electrodes, {decibels} dB white noise: the profile region holds {:.1} %", 100.0 * share);
@@ -176,7 +176,7 @@ fn region_holds_the_truth(count: usize) {
             let points: Vec<Vec3> = scatter.together.iter().map(|fit| fit.position).collect();
             let region = Ellipsoid::holding(&points, fit.position, 0.95).unwrap();
             held += usize::from(region.holds(position));
-            let there = bench.fitter.residual_variance_at(&map, position).unwrap();
+            let there = bench.fitter.held(&map, position).unwrap().0;
             by_noise += usize::from(there <= fit.residual_variance * factor);
             volumes.push(region.volume() * 88f64.powi(3) * 1e-3);
         }

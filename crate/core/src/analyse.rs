@@ -1,7 +1,10 @@
 //! The whole way of a table of maps in one call.
 
 mod compare;
+mod explanations;
+mod landscape;
 mod response;
+mod stability;
 mod tables;
 mod trust;
 
@@ -233,6 +236,7 @@ impl Study {
             electrodes: self.electrodes(),
             maps: Vec::new(),
             populations: self.whole_populations(),
+            suspects: self.asked_suspects(),
             notes: self.notes(),
             understood: self.understood(),
         }
@@ -529,6 +533,9 @@ impl Study {
             region: None,
             populations: None,
             verdict: None,
+            alternatives: None,
+            influence: None,
+            what_if: None,
         }
     }
 

@@ -3,6 +3,7 @@
 
 mod clock;
 mod compare;
+mod explain;
 mod picture;
 mod row;
 mod trust;
@@ -208,7 +209,8 @@ impl Study {
         plain(&self.0.rank(None))
     }
 
-    /// The fit of one map with what is named added to it: `region`, `populations`, `verdict`.
+    /// The fit of one map with what is named added to it: `region`, `populations`, `verdict`, `alternatives`,
+    /// `influence`, `what_if`.
     pub fn assess(&self, index: JsValue, what: JsValue) -> Result<JsValue, JsValue> {
         let index = wire::index(&index, self.0.count())?;
         let what = match what.is_undefined() {

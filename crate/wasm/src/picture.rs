@@ -63,7 +63,8 @@ pub(crate) fn small(thumbnails: &Thumbnails) -> Object {
     ])
 }
 
-fn contour(contour: &Contour) -> Object {
+/// A contour line.
+pub(crate) fn contour(contour: &Contour) -> Object {
     object(&[("level", contour.level.into()), ("points", points(&contour.points).into())])
 }
 

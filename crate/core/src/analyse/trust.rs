@@ -1,16 +1,17 @@
 //! How far a fit may be trusted: refits under drawn errors, simulated maps of other sources, and a verdict.
 
 use super::Study;
+use super::stability::Variation;
 use crate::assess::{Bar, Judged, Reference, degrees_of_freedom, hints, usual_spacing_deg};
 use crate::finding::{Code, Error, Finding};
-use crate::fit::{Fit, Stopped, Tangent};
+use crate::fit::{Fit, PairSearch, Stopped, Tangent};
 use crate::math::{
     Autocorrelation, Ellipsoid, Symmetric3, Vec3, chi_squared_3_quantile, dot, f_quantile, mean, neighbours, select,
 };
 use crate::placement::Placed;
 use crate::report::{
-    Among, Assessment, CauseReport, DrawnEllipsoid, FittedMap, NoiseOnly, NoiseSettings, PopulationReport,
-    RegionReport, Repeats, Settings, Trust, VerdictReport, rule,
+    Among, Assessment, CauseReport, Decision, DrawnEllipsoid, Explanation, FittedMap, NoiseOnly, NoiseSettings,
+    PopulationReport, RegionReport, Repeats, Settings, SuspectReport, Trust, VerdictReport, rule,
 };
 use crate::simulate::{Background, Draw, HeadErrors, Kind, Noise, Population, Refits, SourceRule};
 use crate::understand::ColumnsAre;
@@ -37,6 +38,10 @@ pub(super) struct Simulated {
     neighbours: Arc<OnceLock<Vec<[usize; 2]>>>,
     /// Their usual angle.
     spacing_deg: Arc<OnceLock<f64>>,
+    /// Starts for pairs.
+    pub pairs: Arc<OnceLock<PairSearch>>,
+    /// Heads for what would be otherwise.
+    pub variations: Arc<OnceLock<Vec<Variation>>>,
     /// Of this study's own settings.
     errors: OnceLock<HeadErrors>,
 }
@@ -65,6 +70,8 @@ impl Simulated {
             repeats: Arc::default(),
             neighbours: if same { Arc::clone(&kept.neighbours) } else { Arc::default() },
             spacing_deg: if same { Arc::clone(&kept.spacing_deg) } else { Arc::default() },
+            pairs: if same { Arc::clone(&kept.pairs) } else { Arc::default() },
+            variations: if same { Arc::clone(&kept.variations) } else { Arc::default() },
             // Made for the key.
             errors: study.simulated.errors.clone(),
         }
@@ -168,6 +175,15 @@ impl Study {
         {
             map.region = self.region(map, &values, &fit).map(|region| region.report);
         }
+        if what.contains(&Assessment::Alternatives) {
+            map.alternatives = self.alternatives_of(index, map);
+        }
+        if what.contains(&Assessment::Influence) {
+            map.influence = self.influence_of(index);
+        }
+        if what.contains(&Assessment::WhatIf) {
+            map.what_if = self.what_if_of(index).map(|found| found.into_iter().map(|(_, report)| report).collect());
+        }
         if what.contains(&Assessment::Populations) {
             let among = |(kind, reference): &(Kind, Arc<Reference>)| among(map, *kind, reference);
             map.populations = Some(self.references(&Kind::ALL).iter().map(among).collect());
@@ -208,7 +224,7 @@ impl Study {
         Ok(outcomes.iter().map(|map| Some(self.verdict(map.as_ref().ok()?)?.word)).collect())
     }
 
-    fn verdict(&self, map: &FittedMap) -> Option<VerdictReport> {
+    pub(super) fn verdict(&self, map: &FittedMap) -> Option<VerdictReport> {
         let [one, two, hundred] = BARS.map(|kind| self.reference(kind));
         let (one, two, hundred) = (one?, two?, hundred?);
         let limits = &self.settings.limits;
@@ -235,6 +251,8 @@ impl Study {
             position,
             at_boundary: dipole.at_boundary,
             unfinished,
+            pair: preferred(map, Explanation::MirroredPair),
+            two: preferred(map, Explanation::TwoDipoles),
         };
         let (word, reasons) = bar.judge(&judged);
         Some(VerdictReport::new(
@@ -245,8 +263,17 @@ impl Study {
         ))
     }
 
+    /// Suspects, where the settings ask for them.
+    pub(super) fn asked_suspects(&self) -> Vec<SuspectReport> {
+        if !self.settings.assess.contains(&Assessment::Influence) {
+            return Vec::new();
+        }
+        let unshared = self.unshared(0..self.count()).unwrap_or_default();
+        self.suspects_of(&unshared).unwrap_or_default()
+    }
+
     /// Values of a map and its fit, without a turned sign.
-    fn fit_of(&self, index: usize) -> Option<(Vec<f64>, Fit)> {
+    pub(super) fn fit_of(&self, index: usize) -> Option<(Vec<f64>, Fit)> {
         let values = self.values(index).ok()?;
         let fit = self.fitter.fit(&values)?;
         Some((values, fit))
@@ -256,12 +283,8 @@ impl Study {
         let radius = self.placement.sphere.sphere.radius;
         let Settings { errors, noise, .. } = &self.settings;
         let tangent = self.fitter.tangent(fit);
-        let refits = self.simulated.refits.get_or_init(|| {
-            let seed = u64::from(errors.seed);
-            Refits::new(&self.fitter, self.head_errors(), self.background(), errors.draws, seed)
-        });
         let known = noise.as_ref().map(NoiseSettings::sd);
-        let scatter = refits.scatter(&self.fitter, fit, &tangent, known.map_or(Noise::FromResidual, Noise::Sd));
+        let scatter = self.refits().scatter(&self.fitter, fit, &tangent, known.map_or(Noise::FromResidual, Noise::Sd));
         let cloud: Vec<Vec3> = scatter.together.iter().map(|fit| fit.position).collect();
         let ellipsoid = Ellipsoid::holding(&cloud, fit.position, LEVEL)?;
         let axes = ellipsoid.axes();
@@ -285,8 +308,7 @@ impl Study {
         }
         from.push(caused("noise", vec![known.unwrap_or(scatter.noise_sd)], &scatter.noise));
         let noise = self.noise_only(map, values, fit, &tangent, known);
-        let directions = self.fitter.field().directions();
-        let pairs = self.simulated.neighbours.get_or_init(|| neighbours(directions, NEIGHBOURS));
+        let pairs = self.neighbours();
         let constant = vec![1.0 / (values.len() as f64).sqrt(); values.len()];
         let basis: Vec<Vec<f64>> = core::iter::once(constant).chain(tangent.basis.iter().cloned()).collect();
         // What rounding leaves has no structure.
@@ -394,6 +416,20 @@ impl Study {
         self.simulated.repeats.get_or_init(all).clone()
     }
 
+    /// Which electrodes are neighbours.
+    pub(super) fn neighbours(&self) -> &[[usize; 2]] {
+        self.simulated.neighbours.get_or_init(|| neighbours(self.fitter.field().directions(), NEIGHBOURS))
+    }
+
+    /// Heads and noise that all maps are seen through.
+    pub(super) fn refits(&self) -> &Refits {
+        let errors = &self.settings.errors;
+        self.simulated.refits.get_or_init(|| {
+            let seed = u64::from(errors.seed);
+            Refits::new(&self.fitter, self.head_errors(), self.background(), errors.draws, seed)
+        })
+    }
+
     fn rule(&self, draws: usize) -> String {
         let HeadErrors { skull_ratio, sphere, .. } = self.head_errors();
         rule(&self.head(), self.fitter.field().count(), &self.settings, *skull_ratio, sphere.is_some(), draws)
@@ -412,7 +448,7 @@ impl Study {
         Background { sources: self.settings.errors.background_sources, rule: self.source_rule() }
     }
 
-    fn head_errors(&self) -> &HeadErrors {
+    pub(super) fn head_errors(&self) -> &HeadErrors {
         self.simulated.errors.get_or_init(|| {
             let radius = self.placement.sphere.sphere.radius;
             let errors = &self.settings.errors;
@@ -420,8 +456,7 @@ impl Study {
             let head = self.head();
             // The sphere is fitted to all electrodes, and off only where it was fitted.
             let fitted = head.centre_is_fitted && head.radius_is_fitted && errors.sphere > 0.0;
-            let all: Vec<Vec3> = self.placement.electrodes.iter().map(point).collect();
-            let sphere = fitted.then(|| HeadErrors::sphere_of(&all)).flatten();
+            let sphere = fitted.then(|| HeadErrors::sphere_of(&self.all_points())).flatten();
             HeadErrors {
                 electrodes: errors.electrodes_mm / radius,
                 skull_ratio: errors.skull_ratio.filter(|_| HeadErrors::has_skull(&self.shells)),
@@ -475,8 +510,14 @@ fn among(map: &FittedMap, kind: Kind, reference: &Reference) -> Among {
     }
 }
 
+/// Share of simulated single dipoles behind an explanation that is preferred.
+fn preferred(map: &FittedMap, kind: Explanation) -> Option<f64> {
+    let found = map.alternatives.iter().flatten().find(|one| one.kind == kind);
+    found.filter(|one| one.decision == Decision::Preferred)?.share_of_single_as_large
+}
+
 /// Over the largest value: squares of very large or small ones would leave the range of numbers.
-fn scaled(values: &[f64]) -> Vec<f64> {
+pub(super) fn scaled(values: &[f64]) -> Vec<f64> {
     let largest = values.iter().fold(0.0f64, |most, value| most.max(value.abs()));
     values.iter().map(|value| value / largest).collect()
 }

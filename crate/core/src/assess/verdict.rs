@@ -9,6 +9,8 @@ use serde::Serialize;
 pub enum Word {
     /// One channel carries most of it.
     LoneElectrode,
+    /// A mirrored pair of dipoles explains more of it than one does, by more than errors explain.
+    Paired,
     /// The best position presses on the boundary of the region of sources.
     Edge,
     /// The best position lies where there is no brain.
@@ -59,6 +61,11 @@ pub enum ReasonCode {
     UsualInHundred,
     /// Angle at the centre between the position and the nearest electrode in degrees, over the limit.
     OutsideCoverage,
+    /// A mirrored pair explains more than errors do; the number is the share of simulated single dipoles of which it explains
+    /// as much more.
+    PairExplainsMore,
+    /// The same of two free dipoles.
+    TwoExplainMore,
     /// The search ended before a minimum; the number is its evaluations.
     SearchUnfinished,
 }
@@ -76,6 +83,10 @@ pub struct Judged<'a> {
     pub at_boundary: bool,
     /// Evaluations of a search that ended before a minimum.
     pub unfinished: Option<usize>,
+    /// Share of simulated single dipoles of which a mirrored pair explains as much more, where that pair is preferred.
+    pub pair: Option<f64>,
+    /// The same of two free dipoles.
+    pub two: Option<f64>,
 }
 
 /// What fits are held against.
@@ -113,6 +124,11 @@ impl Bar<'_> {
         if alone > self.lone_electrode {
             give(ReasonCode::OneElectrode, alone, Some(self.lone_electrode));
         }
+        if let Some(share) = fit.pair {
+            give(ReasonCode::PairExplainsMore, share, None);
+        } else if let Some(share) = fit.two {
+            give(ReasonCode::TwoExplainMore, share, None);
+        }
         if fit.at_boundary {
             give(ReasonCode::AtBoundary, fit.position.norm(), None);
         }
@@ -139,13 +155,15 @@ impl Bar<'_> {
         }
         let word = if alone > self.lone_electrode {
             Word::LoneElectrode
+        } else if fit.pair.is_some() {
+            Word::Paired
         } else if fit.at_boundary {
             Word::Edge
         } else if above < 0.0 {
             Word::BelowTheBrain
         } else if none {
             Word::NotDipolar
-        } else if single && two <= self.others && hundred <= self.others {
+        } else if single && fit.two.is_none() && two <= self.others && hundred <= self.others {
             Word::Dipolar
         } else {
             Word::Undecided

@@ -2,27 +2,39 @@
 
 mod choices;
 mod comparison;
+mod explanations;
 mod figure;
 mod groups;
+mod landscape;
 mod messages;
 mod number;
 mod response;
 mod row;
 mod settings;
 mod sheet;
+mod stability;
 mod summary;
 mod trust;
 mod trust_settings;
 
 pub use choices::{ChoiceOffer, ChoiceReport, OptionReport, offered};
 pub use comparison::{Comparison, DecompositionReport, Match, NearDipolar, Pair, RankReport};
+pub use explanations::{
+    AlternativeReport, Alternatives, Decision, Explanation, LEAST_APART_MM, MIRRORED_PART, MOST_OPPOSED,
+    PREFERRED_SHARE, Refusal, WORSE_SHARE,
+};
 pub use figure::{Figure, FigureDipole, FigureShell};
 pub use groups::{Criterion, Group, GroupedDipole, GroupedMember, Groups, GroupsRequest};
+pub(crate) use landscape::slice_words;
+pub use landscape::{Landscape, Level, Probe, Slice};
 pub use messages::{hint, is_warning, message, within_decomposition};
 pub use response::{Fixed, FixedFit, Floor, Instant, Measured, NoiseFound, Response};
 pub use row::{Column, MapRow, columns};
 pub use settings::{Assessment, HeadSettings, Polarity, Settings};
 pub use sheet::{Alternative, HeadSheet, Row, Scale, Sheet, SheetElectrode, Site};
+pub use stability::{
+    Change, Influence, InfluenceReport, SuspectReport, Suspects, WhatIf, WhatIfReport, WithAndWithout,
+};
 pub(crate) use summary::full_name;
 pub use summary::{Curve, Difference, GroupSummary, Member, MemberSummary, Questions, Summary};
 pub use trust::{
@@ -63,6 +75,8 @@ pub struct Report {
     pub maps: Vec<MapReport>,
     /// Simulated maps that maps were set against; empty unless they were asked for.
     pub populations: Vec<PopulationReport>,
+    /// Electrodes that hold the largest residual of many maps; empty unless influence was asked for.
+    pub suspects: Vec<SuspectReport>,
     /// What was assumed and what did not match.
     pub notes: Vec<Note>,
     /// What was made of the files, with everything that can be changed.
@@ -216,6 +230,12 @@ pub struct FittedMap {
     pub populations: Option<Vec<Among>>,
     /// What it may count as.
     pub verdict: Option<VerdictReport>,
+    /// What else may explain it.
+    pub alternatives: Option<Vec<AlternativeReport>>,
+    /// The fit without each electrode.
+    pub influence: Option<Vec<InfluenceReport>>,
+    /// The fit when something is otherwise.
+    pub what_if: Option<Vec<WhatIfReport>>,
 }
 
 impl FittedMap {

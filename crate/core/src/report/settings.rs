@@ -101,6 +101,13 @@ pub enum Assessment {
     Populations,
     /// What it may count as.
     Verdict,
+    /// What else may explain the map.
+    Alternatives,
+    /// The fit without each electrode.
+    Influence,
+    /// The fit when something is otherwise.
+    #[serde(rename = "what_if")]
+    WhatIf,
 }
 
 impl Settings {

@@ -1,6 +1,6 @@
 use super::figure::{ABOVE, BEHIND, Figure, LEFT, TURNED};
 use super::number::{beside, given, hundredths, millimetres, percent, percent_left, significant, tenths};
-use super::{FittedMap, HeadReport, Polarity};
+use super::{EquivalentDipole, FittedMap, HeadReport, Polarity};
 use crate::fit::Stopped;
 use crate::head::heads;
 use crate::map::MapUnit;
@@ -182,17 +182,7 @@ fn sentence(map: &FittedMap, head: &HeadReport) -> String {
         percent(map.residual_variance),
         map.degrees_of_freedom
     );
-    let site = match dipole.nearest_site {
-        Some(site) => format!("under {site}"),
-        None if dipole.eccentricity < 0.1 => "near the centre of the sphere".into(),
-        None if dipole.canonical_mm[2] < 0.0 => "low in the head, under no standard site".into(),
-        None => "away from all standard sites".into(),
-    };
-    let place = format!(
-        "Equivalent position {site}, {}, model depth {} mm; published error of sphere models about 10 mm.",
-        dipole.side,
-        millimetres(dipole.depth_mm)
-    );
+    let place = format!("Equivalent position {}; published error of sphere models about 10 mm.", place(dipole));
     let reservation = match map.fit.stopped_because {
         Stopped::Converged => "",
         Stopped::Boundary => {
@@ -202,6 +192,17 @@ fn sentence(map: &FittedMap, head: &HeadReport) -> String {
     };
     let unusual = if head.unusual { " The shells of the model may not hold for this head." } else { "" };
     format!("{shares} {place}{reservation}{unusual} {CAUTION}")
+}
+
+/// Where a dipole lies, as in "under CP3, left, model depth 14 mm".
+pub(super) fn place(dipole: &EquivalentDipole) -> String {
+    let site = match dipole.nearest_site {
+        Some(site) => format!("under {site}"),
+        None if dipole.eccentricity < 0.1 => "near the centre of the sphere".into(),
+        None if dipole.canonical_mm[2] < 0.0 => "low in the head, under no standard site".into(),
+        None => "away from all standard sites".into(),
+    };
+    format!("{site}, {}, model depth {} mm", dipole.side, millimetres(dipole.depth_mm))
 }
 
 /// Stands beside every share.

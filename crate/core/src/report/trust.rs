@@ -222,12 +222,15 @@ impl VerdictReport {
     pub fn new(word: Word, reasons: &[Reason], hints: &[Hint], noise: f64) -> Self {
         Self {
             word,
-            text: match reasons.iter().any(|reason| reason.code == ReasonCode::SeldomOneDipole)
-                && word == Word::Undecided
-            {
-                true => SELDOM.into(),
-                false => verdict_text(word).into(),
-            },
+            text: match reasons.iter().map(|reason| reason.code) {
+                mut codes if word == Word::Undecided => match codes.find(|code| UNDECIDED_FOR.contains(code)) {
+                    Some(ReasonCode::TwoExplainMore) => TWO,
+                    Some(_) => SELDOM,
+                    None => verdict_text(word),
+                },
+                _ => verdict_text(word),
+            }
+            .into(),
             reasons: reasons.iter().map(|one| reason(one, noise)).collect(),
             hints: hints
                 .iter()
@@ -237,6 +240,13 @@ impl VerdictReport {
     }
 }
 
+/// Of a map that two dipoles explain better.
+const TWO: &str =
+    "Undecided: two dipoles explain more of this map than one, by more than errors of the head and noise do.";
+
+/// Reasons for which a map is undecided whatever populations say, in the order that they are given in.
+const UNDECIDED_FOR: [ReasonCode; 2] = [ReasonCode::TwoExplainMore, ReasonCode::SeldomOneDipole];
+
 /// Of a map that is undecided because few single dipoles leave as much over.
 const SELDOM: &str =
     "Undecided: more is left over than with most simulated single dipoles, but a few of them leave as much.";
@@ -245,6 +255,9 @@ fn verdict_text(word: Word) -> &'static str {
     match word {
         Word::LoneElectrode => {
             "Lone electrode: one channel carries most of this map, which may be a fault of its contact; a dipole says little about it."
+        }
+        Word::Paired => {
+            "Paired: a mirrored pair of dipoles explains more of this map than a single one, by more than errors of the head and noise do."
         }
         Word::Edge => {
             "Edge: the best position presses on the boundary of the modelled brain. The source may lie outside it, or the fit is noisy."
@@ -301,6 +314,12 @@ fn reason(reason: &Reason, noise: f64) -> ReasonReport {
             millimetres(value),
             millimetres(limit)
         ),
+        ReasonCode::PairExplainsMore => {
+            format!("A mirrored pair gains as much with {} of the simulated single dipoles.", share(value))
+        }
+        ReasonCode::TwoExplainMore => {
+            format!("Two free dipoles gain as much with {} of the simulated single dipoles.", share(value))
+        }
         ReasonCode::SearchUnfinished => "The search ended before it reached a minimum.".into(),
     };
     ReasonReport { code: reason.code, text, value, limit: reason.limit }

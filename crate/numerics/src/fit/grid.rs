@@ -16,10 +16,10 @@ pub(super) struct Grid {
 }
 
 /// Steps from the centre to the boundary.
-const LAYERS: usize = 6;
+pub(super) const LAYERS: usize = 6;
 
 /// Starts keep this distance from each other, in grid steps.
-const SEPARATION: f64 = 1.2;
+pub(super) const SEPARATION: f64 = 1.2;
 
 /// Maps that the innermost loop takes together: what the registers hold.
 const TOGETHER: usize = 3;

@@ -4,9 +4,11 @@
 //! best moment solves a linear problem, so that only three coordinates are searched. A grid of positions gives separate
 //! starts, Newton steps with exact derivatives refine them inside the ball of allowed sources, and the best one stands.
 
+mod apart;
 mod common;
 mod grid;
 mod objective;
+mod pairs;
 mod profile;
 mod refine;
 mod tangent;
@@ -14,9 +16,11 @@ mod tangent;
 use crate::forward::{Field, LeadField, along};
 use crate::math::lanes::splat3;
 use crate::math::{Lanes, Single, Vec3, centre, dot, mean};
+pub use apart::LocalFitter;
 pub use common::Common;
 use grid::{Explained, Grid};
 use objective::{Objective, Surface};
+pub use pairs::{Arrangement, Pair, PairSearch};
 pub use profile::Profile;
 use refine::{DOUBLE, Precision, Region, SINGLE, least, refine};
 pub use tangent::Tangent;

@@ -103,6 +103,14 @@ impl<'a, L: Lanes> Objective<'a, L> {
         self.evaluations
     }
 
+    /// Residual variance at a position and the best moment there, without derivatives.
+    pub(super) fn value(&mut self, position: Vec3) -> Option<(f64, Vec3)> {
+        self.field.potentials::<false>(position, &mut self.potentials);
+        let Normal { mean, matrix, right } = self.normal(position);
+        let moment = matrix.factor()?.solve(right);
+        Some((self.leave(&Place::new(position, moment), mean.dot(moment)), moment))
+    }
+
     #[inline(never)]
     fn normal(&self, position: Vec3) -> Normal {
         let p2 = splat3(position * 2.0);

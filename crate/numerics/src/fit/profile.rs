@@ -15,12 +15,6 @@ pub struct Profile {
 }
 
 impl Fitter {
-    /// Residual variance of the best dipole at a position.
-    pub fn residual_variance_at(&self, map: &[f64], position: Vec3) -> Option<f64> {
-        let (map, _) = normalise(map)?;
-        Some(Objective::new(self.field.field(), &map).evaluate(position)?.residual_variance)
-    }
-
     /// The region around a fit of this map where the residual variance is at most `limit`, by so many rays.
     pub fn profile(&self, map: &[f64], fit: &Fit, limit: f64, rays: usize) -> Option<Profile> {
         let (map, _) = normalise(map)?;

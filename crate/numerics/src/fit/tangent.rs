@@ -24,7 +24,7 @@ impl Tangent {
     /// What of a map no small change of the dipole makes.
     pub fn left(&self, map: &[f64]) -> Vec<f64> {
         let mut left = map.to_vec();
-        remove(&mut left, &self.basis);
+        take_out(&mut left, &self.basis);
         left
     }
 }
@@ -43,8 +43,8 @@ impl Fitter {
         let mut basis: Vec<Vec<f64>> = Vec::with_capacity(6);
         let add = |mut column: Vec<f64>, basis: &mut Vec<Vec<f64>>| {
             let before = dot(&column, &column);
-            remove(&mut column, basis);
-            remove(&mut column, basis);
+            take_out(&mut column, basis);
+            take_out(&mut column, basis);
             let left = dot(&column, &column);
             if left > 1e-20 * before {
                 column.iter_mut().for_each(|value| *value /= left.sqrt());
@@ -57,7 +57,7 @@ impl Fitter {
         }
         let slopes = by_position.map(|mut column| {
             centre(&mut column);
-            remove(&mut column, &basis);
+            take_out(&mut column, &basis);
             column
         });
         let information = Symmetric3::from_fn(|i, j| dot(&slopes[i], &slopes[j]));
@@ -67,7 +67,7 @@ impl Fitter {
 }
 
 /// Takes out what orthonormal columns hold of a map.
-fn remove(map: &mut [f64], basis: &[Vec<f64>]) {
+pub(super) fn take_out(map: &mut [f64], basis: &[Vec<f64>]) {
     for column in basis {
         let share = dot(map, column);
         map.iter_mut().zip(column).for_each(|(value, column)| *value -= share * column);

@@ -6,11 +6,10 @@ mod picture;
 mod raster;
 mod spline;
 
-pub use contour::Contour;
+pub use contour::{Contour, contours};
 pub use disc::DiscPoint;
 pub use picture::{Extremes, Layer, Picture, PictureElectrode, Ring};
 pub use raster::{Raster, mean_raster};
 pub use spline::Spline;
 
-use contour::contours;
 use disc::{Disc, hull};

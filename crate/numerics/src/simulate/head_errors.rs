@@ -85,15 +85,8 @@ impl HeadErrors {
             }
             _ => (Vec3::ZERO, 1.0),
         };
-        let mut stream = Stream::new(seed, part::ELECTRODES, index);
-        let moved = if drawn(Cause::Electrodes) { self.electrodes * core::f64::consts::FRAC_1_SQRT_2 } else { 0.0 };
-        let directions = self.points.iter().filter_map(|&point| {
-            let out = point.unit()?;
-            let error = stream.normal3() * moved;
-            // Along the scalp: what goes inwards or outwards is projected away in any case.
-            (point + error - out * out.dot(error) - offset).unit()
-        });
-        let directions = directions.collect();
+        let moved = if drawn(Cause::Electrodes) { self.electrodes } else { 0.0 };
+        let directions = displaced(&self.points, moved, offset, seed, index);
         let shells = match self.skull_ratio {
             Some([least, most]) if drawn(Cause::Skull) => {
                 let even = Stream::new(seed, part::SKULL, index).even();
@@ -127,6 +120,20 @@ impl DrawnHead {
     }
 }
 
+/// Directions of electrodes that are off by this root-mean-square distance along the scalp, in scalp radii, from a centre
+/// that is.
+pub fn displaced(points: &[Vec3], distance: f64, centre: Vec3, seed: u64, index: u64) -> Vec<Vec3> {
+    let mut stream = Stream::new(seed, part::ELECTRODES, index);
+    let moved = distance * core::f64::consts::FRAC_1_SQRT_2;
+    let directions = points.iter().filter_map(|&point| {
+        let out = point.unit()?;
+        let error = stream.normal3() * moved;
+        // Along the scalp: what goes inwards or outwards is projected away in any case.
+        (point + error - out * out.dot(error) - centre).unit()
+    });
+    directions.collect()
+}
+
 /// The shell called skull, unless it is the innermost one.
 fn skull(shells: &Shells) -> Option<usize> {
     let found = shells.specs().iter().position(|shell| shell.tissue.eq_ignore_ascii_case("skull"));
@@ -134,7 +141,7 @@ fn skull(shells: &Shells) -> Option<usize> {
 }
 
 /// The same shells with a skull that conducts so many times less than the brain.
-fn with_skull(shells: &Shells, ratio: f64) -> Shells {
+pub fn with_skull(shells: &Shells, ratio: f64) -> Shells {
     let brain = shells.specs()[0].conductivity;
     let skull = skull(shells);
     let specs = shells.specs().iter().enumerate().map(|(index, shell)| ShellSpec {

@@ -5,7 +5,7 @@ mod population;
 mod refits;
 mod sources;
 
-pub use head_errors::{Cause, DrawnHead, HeadErrors};
+pub use head_errors::{Cause, DrawnHead, HeadErrors, displaced, with_skull};
 pub use population::{Draw, Kind, Population};
 pub use refits::{Noise, Refits, Scatter};
 pub use sources::{Background, Orientation, SourceRule};

@@ -37,6 +37,15 @@ pub struct Scatter {
     pub noise_sd: f64,
 }
 
+/// A map of one dipole in a head that is off.
+#[derive(Clone, Debug)]
+pub struct Simulated<'a> {
+    /// The map, noise included.
+    pub map: Vec<f64>,
+    noise: &'a [f64],
+    size: f64,
+}
+
 /// Draws that each cause alone is refitted in: its standard deviation is then known to a tenth.
 const ALONE: usize = 50;
 
@@ -53,25 +62,24 @@ impl Refits {
         Self { draws: (0..draws as u64).map(drawn).collect(), alone: Cause::ALL.map(alone) }
     }
 
-    /// The dipole of a fit seen through each of the heads, with noise, and fitted again in the head as modelled.
+    /// The maps that the dipole of a fit makes in each of the heads, with noise: maps of one dipole that look, to the fit,
+    /// like the one that was fitted.
     ///
     /// Where the noise is not known, its strength is that which explains the residual: in each draw, what it leaves beside
     /// the fit adds up with what the errors of the head leave to what the fit left.
-    pub fn scatter(&self, fitter: &Fitter, fit: &Fit, tangent: &Tangent, noise: Noise) -> Scatter {
-        let scale = fitter.field().scale();
-        let moment = fit.moment * scale;
+    pub fn maps<'a>(
+        &'a self,
+        fitter: &'a Fitter,
+        fit: &Fit,
+        tangent: &'a Tangent,
+        noise: Noise,
+    ) -> impl Iterator<Item = Simulated<'a>> {
+        let (position, moment) = (fit.position, fit.moment * fitter.field().scale());
         let projected = fitter.project(fit.position, fit.moment);
         let rv = fit.residual_variance;
         let left = dot(&projected, &projected) * rv / (1.0 - rv).max(1e-9);
-        let seen = |head: &DrawnHead| head.map(fit.position, moment);
-        let follow = |map: &[f64]| fitter.follow(map, fit.position);
-        let added = |map: &[f64], noise: &[f64], size: f64| -> Vec<f64> {
-            map.iter().zip(noise).map(|(value, noise)| value + size * noise).collect()
-        };
-        let mut scatter = Scatter { together: Vec::new(), alone: Default::default(), noise: Vec::new(), noise_sd: 0.0 };
-        let mut squares = Vec::with_capacity(self.draws.len());
-        for (index, draw) in self.draws.iter().enumerate() {
-            let map = seen(&draw.head);
+        self.draws.iter().map(move |draw| {
+            let map = draw.head.map(position, moment);
             let size = match noise {
                 Noise::Sd(sd) => sd * (map.len() as f64).sqrt(),
                 Noise::FromResidual => {
@@ -79,18 +87,35 @@ impl Refits {
                     strength(&tangent.left(&off), &tangent.left(&draw.noise), left)
                 }
             };
+            Simulated { map: added(&map, &draw.noise, size), noise: &draw.noise, size }
+        })
+    }
+
+    /// Where the fits of these maps go, in the head as modelled.
+    pub fn scatter(&self, fitter: &Fitter, fit: &Fit, tangent: &Tangent, noise: Noise) -> Scatter {
+        let moment = fit.moment * fitter.field().scale();
+        let projected = fitter.project(fit.position, fit.moment);
+        let follow = |map: &[f64]| fitter.follow(map, fit.position);
+        let mut scatter = Scatter { together: Vec::new(), alone: Default::default(), noise: Vec::new(), noise_sd: 0.0 };
+        let mut squares = Vec::with_capacity(self.draws.len());
+        for (index, Simulated { map, noise, size }) in self.maps(fitter, fit, tangent, noise).enumerate() {
             squares.push(size * size / map.len() as f64);
-            scatter.together.extend(follow(&added(&map, &draw.noise, size)));
+            scatter.together.extend(follow(&map));
             if index < ALONE {
-                scatter.noise.extend(follow(&added(&projected, &draw.noise, size)).map(|fit| fit.position));
+                scatter.noise.extend(follow(&added(&projected, noise, size)).map(|fit| fit.position));
             }
         }
         scatter.alone = [0, 1, 2].map(|cause: usize| {
-            self.alone[cause].iter().filter_map(|head| follow(&seen(head))).map(|fit| fit.position).collect()
+            let seen = self.alone[cause].iter().filter_map(|head| follow(&head.map(fit.position, moment)));
+            seen.map(|fit| fit.position).collect()
         });
         scatter.noise_sd = mean(&squares).sqrt();
         scatter
     }
+}
+
+fn added(map: &[f64], noise: &[f64], size: f64) -> Vec<f64> {
+    map.iter().zip(noise).map(|(value, noise)| value + size * noise).collect()
 }
 
 /// The a ≥ 0 for which |h + a b|² = left; 0 where h alone leaves more.
