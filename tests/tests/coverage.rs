@@ -322,6 +322,8 @@ impl Court {
             position: fit.position * (1.0 / BRAIN),
             at_boundary: fit.at_boundary,
             unfinished: None,
+            pair: None,
+            two: None,
         };
         bar.judge(&judged).0
     }
