@@ -6,6 +6,7 @@ import { takeDropsAndPastes } from "./intake/drop.js";
 import { makeSession } from "./session/session.js";
 import { writeWords } from "./text/words.js";
 import { showAllDipoles } from "./views/all_dipoles.js";
+import { showAlternatives } from "./views/alternatives.js";
 import { showAnswer } from "./views/answer.js";
 import { showColophon } from "./views/colophon.js";
 import { showDecompositions } from "./views/decompositions.js";
@@ -15,7 +16,9 @@ import { showExamples } from "./views/examples.js";
 import { showFailure } from "./views/failure.js";
 import { showHead } from "./views/head.js";
 import { showHeadViews } from "./views/head_views.js";
+import { showInfluence } from "./views/influence.js";
 import { showIntake } from "./views/intake.js";
+import { showLandscape } from "./views/landscape.js";
 import { showMatching } from "./views/matching.js";
 import { showMaps } from "./views/maps.js";
 import { showNotes } from "./views/notes.js";
@@ -31,6 +34,7 @@ import { showTrust } from "./views/trust.js";
 import { showTrustSettings } from "./views/trust_settings.js";
 import { showUnderstood } from "./views/understood.js";
 import { showUndo } from "./views/undo.js";
+import { showWhatIf } from "./views/what_if.js";
 
 need("unstarted", HTMLElement).remove();
 /** @import { Pool } from "./engine/pool/pool.js" */
@@ -63,6 +67,10 @@ for (const show of [
   showSign,
   showTrust,
   showHeadViews,
+  showLandscape,
+  showAlternatives,
+  showInfluence,
+  showWhatIf,
   showPopulations,
   showTrustSettings,
   showNumbers,

@@ -913,6 +913,12 @@ type WorkerTask =
   | { kind: "population"; key: number; population: PopulationKind; first: number; last: number }
   | { kind: "trust"; key: number; index: number; populations: GivenPopulations | null }
   | { kind: "verdicts"; key: number; populations: GivenPopulations }
+  | { kind: "alternatives"; key: number; index: number; populations: GivenPopulations | null }
+  | { kind: "influence"; key: number; index: number }
+  | { kind: "what-if"; key: number; index: number }
+  | { kind: "landscape"; key: number; index: number; at: number[] | null }
+  | { kind: "probe"; key: number; index: number; at: number[]; picture: boolean }
+  | { kind: "suspects"; key: number }
   | { kind: "close"; key: number };
 
 /** `named`: requests of the studies that the task needs and the worker does not hold. */
@@ -1049,6 +1055,22 @@ interface Answer {
   verdicts: (VerdictWord | null)[] | null;
 }
 
+/** What is told of the map of an answer beyond its trust; each null until it is there. */
+interface Explained {
+  key: number;
+  chosen: number;
+  alternatives: Alternatives | null;
+  /** Whether other explanations are being looked for. */
+  searching: boolean;
+  influence: Influence | null;
+  whatIf: WhatIf | null;
+  landscape: Landscape | null;
+  /** The dipole where it was moved by hand; null at the best fit. `kept` while something else is looked at. */
+  hand: (Probe & { kept: boolean }) | null;
+  /** The dipole at the place that is pointed at. */
+  felt: Probe | null;
+}
+
 interface SessionState {
   phase: Phase;
   program: Program | null;
@@ -1087,4 +1109,7 @@ interface SessionState {
   threshold: number;
   /** Of the current decomposition. */
   populations: Populations | null;
+  explained: Explained;
+  /** With the key of the answer whose they are. */
+  suspects: (Suspects & { key: number }) | null;
 }

@@ -71,7 +71,7 @@ export function imageOfRaster(raster, size, stretch, theme) {
  * @param {number} height
  * @param {Picture} picture
  */
-function layOutDisc(width, height, picture) {
+export function layOutDisc(width, height, picture) {
   const edge = Math.max(...picture.rings.map((ring) => ring.radius), 0.5);
   const unit = Math.max(1, Math.min(width, height) / 2 - DISC_MARGIN) / edge;
   return { middle: width / 2, centre: height / 2, unit, edge };
@@ -164,7 +164,7 @@ export function paintDisc(canvas, content, around) {
  * @param {DiscContent["words"]} words
  * @param {Surroundings} around
  */
-function paintSides(pen, middle, centre, reach, words, around) {
+export function paintSides(pen, middle, centre, reach, words, around) {
   pen.strokeStyle = around.ink;
   pen.lineWidth = 1.5;
   pen.beginPath();

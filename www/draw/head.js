@@ -42,7 +42,7 @@ const CIRCLE_STEPS = 96;
  * @property {{ side: Side, text: string }[]} letters
  * @property {string} seen written below
  * @property {number[]} [named] electrodes of the near side with their labels
- * @property {RegionMarks | null} [region] where the dipole may lie as well
+ * @property {RegionMarks} [region] where the dipole may lie as well
  */
 
 /** @type {Record<Side, number[]>} */

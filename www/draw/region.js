@@ -6,12 +6,18 @@ import { seriesColour } from "./series.js";
 /** @import { Surroundings } from "./canvas.js" */
 
 /**
- * `errors` under drawn errors, `noise` if the residual were independent noise, `repeats` of one map.
- * @typedef {{ cloud: number[][], errors: Ellipsoid | null, noise: Ellipsoid | null, repeats: number[][] }} RegionMarks
+ * `errors` under drawn errors, `noise` if the residual were independent noise, `repeats` of one map, `others` in place of the one dipole.
+ * @typedef {{ cloud: number[][], errors: Ellipsoid | null, noise: Ellipsoid | null, repeats: number[][], others: OtherDipole[] }} RegionMarks
+ * @typedef {{ kind: OtherKind, position: number[], direction: number[] }} OtherDipole
+ * @typedef {Exclude<ExplanationKind, "single"> | "hand"} OtherKind
  */
 
 const OUTLINE_STEPS = 72;
 const NOISE_DASH = [4, 3];
+/** Half of another dipole's line over the radius of the scalp. */
+const OTHER_MOMENT = 0.17;
+/** Corners of the shape at its place; the hand's is round. @type {Record<OtherKind, number>} */
+const OTHER_CORNERS = { "second-minimum": 3, "mirrored-pair": 4, "two-dipoles": 6, hand: 24 };
 
 /**
  * The outline of an ellipsoid seen in parallel: of the covariance only the part that lies across the line of sight counts.
@@ -62,12 +68,44 @@ function strokeDiamond(pen, x, y, around) {
 }
 
 /**
+ * A dipole that is not the best fit: hollow.
+ * @param {CanvasRenderingContext2D} pen
+ * @param {(point: number[]) => { x: number, y: number }} place
+ * @param {OtherDipole} dipole
+ * @param {Surroundings} around
+ */
+export function strokeOther(pen, place, { kind, position, direction }, around) {
+  const corners = OTHER_CORNERS[kind];
+  const foot = place(position);
+  const ends = [-OTHER_MOMENT, OTHER_MOMENT].map((half) => place(position.map((part, axis) => part + half * direction[axis])));
+  const start = Math.PI / (corners === 4 ? 4 : 2);
+  for (const [ink, width] of /** @type {[string, number][]} */ ([[around.paper, 4.5], [around.ink, 1.75]])) {
+    pen.strokeStyle = ink;
+    pen.lineWidth = width;
+    pen.setLineDash(ink === around.paper ? [] : [4, 2]);
+    pen.beginPath();
+    for (const { x, y } of ends) pen.lineTo(x, y);
+    pen.stroke();
+    pen.setLineDash([]);
+    pen.fillStyle = around.paper;
+    pen.beginPath();
+    for (let at = 0; at < corners; at++) {
+      const angle = start + (2 * Math.PI * at) / corners;
+      pen.lineTo(foot.x + 5 * Math.cos(angle), foot.y - 5 * Math.sin(angle));
+    }
+    pen.closePath();
+    pen.stroke();
+    pen.fill();
+  }
+}
+
+/**
  * @param {CanvasRenderingContext2D} pen
  * @param {(point: number[]) => { x: number, y: number }} place
  * @param {RegionMarks} marks
  * @param {Surroundings} around
  */
-export function paintRegion(pen, place, { cloud, errors, noise, repeats }, around) {
+export function paintRegion(pen, place, { cloud, errors, noise, repeats, others }, around) {
   const [colour, other] = [0, 1].map((at) => seriesColour(at, around.theme));
   pen.fillStyle = colour;
   pen.globalAlpha = 0.5;
@@ -84,9 +122,10 @@ export function paintRegion(pen, place, { cloud, errors, noise, repeats }, aroun
     const { x, y } = place(point);
     strokeDiamond(pen, x, y, around);
   }
+  for (const other of others) strokeOther(pen, place, other, around);
 }
 
-/** Marks as a legend shows them, 26 by 10: a flat ellipse seen from above. @param {keyof RegionMarks} kind @returns {RegionMarks} */
+/** Marks as a legend shows them, 26 by 10: a flat ellipse seen from above. @param {Exclude<keyof RegionMarks, "others"> | OtherKind} kind @returns {RegionMarks} */
 export function legendMarks(kind) {
   const flat = { centre: [13, 5, 0], covariance: [120, 0, 0, 12, 0, 0], scale: 1 };
   return {
@@ -94,6 +133,7 @@ export function legendMarks(kind) {
     errors: kind === "errors" ? flat : null,
     noise: kind === "noise" ? flat : null,
     repeats: kind === "repeats" ? [[7, 5], [19, 5]] : [],
+    others: kind in OTHER_CORNERS ? [{ kind: /** @type {OtherKind} */ (kind), position: [13, 5, 0], direction: [64, 0, 0] }] : [],
   };
 }
 

@@ -287,6 +287,29 @@ async function answerTask(message) {
       });
       return self.postMessage({ id, value: words });
     }
+    case "alternatives": {
+      const study = studyOf(message.key);
+      handOver(study, message.populations);
+      return self.postMessage({ id, value: study.alternatives(message.index) });
+    }
+    case "influence":
+      return self.postMessage({ id, value: studyOf(message.key).influence(message.index) });
+    case "what-if":
+      return self.postMessage({ id, value: studyOf(message.key).whatIf(message.index) });
+    case "landscape":
+      return self.postMessage({ id, value: studyOf(message.key).landscape(message.index, message.at ?? undefined) });
+    case "probe":
+      return self.postMessage({ id, value: studyOf(message.key).probe(message.index, message.at, message.picture) });
+    case "suspects": {
+      const study = studyOf(message.key);
+      const leaders = new Uint16Array(study.count);
+      await inSlices(message.key, study, { first: 0, last: study.count }, (done, milliseconds) => {
+        const some = study.leaders(done, study.count, milliseconds);
+        leaders.set(some, done);
+        return some.length;
+      });
+      return self.postMessage({ id, value: study.suspects(leaders) });
+    }
     case "close":
       closeStudy(message.key);
       return self.postMessage({ id, value: null });

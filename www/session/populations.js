@@ -7,6 +7,7 @@
  */
 
 import { POPULATION_KINDS } from "../engine/kinds.js";
+import { askHelper } from "./explanations.js";
 
 /** @import { Pool } from "../engine/pool/pool.js" */
 /** @import { Fitting } from "./fitting.js" */
@@ -176,13 +177,8 @@ export function makePopulations(store, pool, fail, fitting) {
     if (held === null || asked.verdicts === key) return;
     asked.verdicts = key;
     const task = /** @type {WorkerTask} */ ({ kind: "verdicts", key, populations: given(held) });
-    /** @param {Fault} fault a helper that is lost says nothing about the maps */
-    const again = (fault) => {
-      if (!fault.code.startsWith("worker-")) throw fault;
-      return engine.ask(task);
-    };
     try {
-      const verdicts = await (count > BRIEF_MAPS ? engine.askAside(task).catch(again) : engine.ask(task));
+      const verdicts = await (count > BRIEF_MAPS ? askHelper(engine, task) : engine.ask(task));
       const { answer } = store.read();
       if (answer?.key === key) store.write({ answer: { ...answer, verdicts } });
     } finally {
@@ -261,6 +257,9 @@ export function makePopulations(store, pool, fail, fitting) {
   store.watch(({ populations }) => populations, lookSoon);
 
   return {
+    /** What a verdict of the present answer rests on by now; null while that is too little. */
+    givenPopulations: () => (held !== null && level(held) > 0 && study === store.read().answer?.key ? given(held) : null),
+
     /** Draws reference populations again after they were stopped. */
     drawPopulations() {
       if (held === null) return;

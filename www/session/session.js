@@ -3,6 +3,7 @@
  * and watch it.
  */
 
+import { makeExplanations, UNEXPLAINED } from "./explanations.js";
 import { makeFitting } from "./fitting.js";
 import { makeInquiries } from "./inquiries.js";
 import { makePopulations } from "./populations.js";
@@ -59,6 +60,8 @@ export function makeSession() {
       arriving: false,
       threshold: 0.1,
       populations: null,
+      explained: UNEXPLAINED,
+      suspects: null,
     }),
   );
 
@@ -368,12 +371,14 @@ export function makeSession() {
   const inquiries = makeInquiries(store, () => client, fail, fitting);
   const sideBySide = makeSideBySide(store, () => client, { fitting, step, askChanged, choose: inquiries.choose });
 
-  const populations = makePopulations(store, () => client, fail, fitting);
+  const { givenPopulations, ...populations } = makePopulations(store, () => client, fail, fitting);
+  const explanations = makeExplanations(store, () => client, fail, fitting, givenPopulations);
 
   return {
     ...inquiries,
     ...sideBySide,
     ...populations,
+    ...explanations,
     read: store.read,
     watch: store.watch,
     fail,
@@ -630,6 +635,7 @@ export function makeSession() {
     cancel() {
       fitting.cancel();
       populations.stopPopulations();
+      explanations.stopExplaining();
       store.write({ phase: fitting.restingPhase(), progress: null, stopped: true });
     },
 

@@ -3,6 +3,7 @@
  * leave it out. The values of the one pointed at stand beside the maps too.
  */
 
+import { explainedOf } from "../session/explanations.js";
 import { shortName, typeset } from "../text/figures.js";
 import { electrodeParts, leftOutText, symbolOf, word } from "../text/words.js";
 import { make, need } from "./element.js";
@@ -163,6 +164,8 @@ export function showElectrodes(session) {
     readout.replaceChildren(
       make("strong", shortName(electrode.label)),
       ...electrodeParts(electrode, sheet.scale.unit).map((part) => make("span", typeset(part))),
+      // The maps may show the dipole elsewhere.
+      ...(explainedOf(session.read()).hand === null ? [] : [make("span", word("hand.values"))]),
     );
   }
 

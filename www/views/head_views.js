@@ -2,6 +2,7 @@
 
 import { surroundingsOf } from "../draw/canvas.js";
 import { electrodeOnHead, paintHead } from "../draw/head.js";
+import { explainedOf } from "../session/explanations.js";
 import { typeset } from "../text/figures.js";
 import { standpointText, word } from "../text/words.js";
 import { need } from "./element.js";
@@ -82,7 +83,7 @@ export function showHeadViews(session) {
       from: from(),
       letters: sides.map((side) => ({ side, text: word(`map.${side}`) })),
       seen: seen(),
-      region: regionMarks(answer.trust),
+      region: regionMarks(session.read()),
     };
   }
 
@@ -164,6 +165,14 @@ export function showHeadViews(session) {
     },
   );
   session.watch((state) => state.pointed, paint);
+  session.watch((state) => explainedOf(state).hand, paint);
+  session.watch(
+    (state) => explainedOf(state).alternatives,
+    (others) => {
+      need("others-alt", HTMLElement).textContent = typeset(others?.alt ?? "");
+      paint();
+    },
+  );
   session.watch(
     ({ answer }) => answer?.trust,
     (trust) => {

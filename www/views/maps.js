@@ -6,6 +6,7 @@
 import { paintBar } from "../draw/bar.js";
 import { surroundingsOf } from "../draw/canvas.js";
 import { electrodeOnDisc, paintDisc } from "../draw/disc.js";
+import { explainedOf } from "../session/explanations.js";
 import { stretchText, typeset } from "../text/figures.js";
 import { electrodeText, scaleText, symbolOf, usedText, word } from "../text/words.js";
 import { need } from "./element.js";
@@ -47,6 +48,8 @@ function nextElectrode(electrodes, from, [dx, dy]) {
 /** @param {Session} session */
 export function showMaps(session) {
   const discs = ROLES.map((role) => ({ role, canvas: need(`map-${role}`, HTMLCanvasElement) }));
+  /** Beside the slices in which the dipole is moved. */
+  const copies = ROLES.map((role) => ({ role, canvas: need(`hand-${role}`, HTMLCanvasElement) }));
   const bar = need("scale-bar", HTMLCanvasElement);
   const said = need("electrode-said", HTMLElement);
   const words = {
@@ -61,9 +64,11 @@ export function showMaps(session) {
   const paint = keepPainted(need("fitted", HTMLElement), (printing) => {
     const { answer, pointed: label } = session.read();
     if (!answer?.sheet) return;
-    const { picture, figure } = answer.sheet;
+    const { hand } = explainedOf(session.read());
+    const picture = hand?.picture ?? answer.sheet.picture;
+    const figure = hand === null ? answer.sheet.figure : { ...answer.sheet.figure, dipole: { position: hand.at, direction: hand.direction } };
     const pointed = printing ? -1 : picture.electrodes.findIndex((electrode) => electrode.label === label);
-    for (const { role, canvas } of discs) {
+    for (const { role, canvas } of hand === null ? discs : [...discs, ...copies]) {
       const stretched = role === "residual" && picture.stretch !== 1 ? stretchText(picture.stretch) : "";
       const content = { picture, role, dipole: role === "projected", figure, pointed, stretched, words };
       paintDisc(canvas, content, surroundingsOf(canvas, printing));
@@ -143,19 +148,39 @@ export function showMaps(session) {
     canvas.addEventListener("keydown", takeKey);
   }
 
+  /** What the maps are, in words; moved by hand they are no longer those of the fit. */
+  function describe() {
+    const sheet = session.read().answer?.sheet;
+    if (!sheet) return;
+    const { hand } = explainedOf(session.read());
+    const { stretch } = hand?.picture ?? sheet.picture;
+    for (const { role, canvas } of [...discs, ...copies]) {
+      const moved = hand !== null && role !== "measured";
+      canvas.setAttribute("aria-label", typeset(moved ? `${word(`map.${role}`)}, ${word("hand.moved")}: ${hand.sentence}` : sheet.alt[role]));
+    }
+    const stretched = stretch === 1 ? "" : stretchText(stretch);
+    for (const id of ["stretch", "hand-stretch"]) need(id, HTMLElement).textContent = stretched;
+    need("scale-words", HTMLElement).textContent = scaleText(sheet.scale.unit, stretched);
+    need("map-by-hand", HTMLElement).hidden = hand === null;
+  }
+  session.watch(
+    (state) => explainedOf(state).hand,
+    () => {
+      describe();
+      paint();
+    },
+  );
+
   session.watch(
     (state) => state.answer?.sheet,
     (sheet) => {
       if (!sheet) return;
-      const { picture, alt, scale, electrodes } = sheet;
-      for (const { role, canvas } of discs) canvas.setAttribute("aria-label", typeset(alt[role]));
+      const { scale, electrodes } = sheet;
       /** @param {string} sign */
       const end = (sign) => typeset(`${sign}${scale.limit} ${symbolOf(scale.unit)}`.trim());
       need("scale-low", HTMLElement).textContent = end("-");
       need("scale-high", HTMLElement).textContent = end("+");
-      const stretched = picture.stretch === 1 ? "" : stretchText(picture.stretch);
-      need("stretch", HTMLElement).textContent = stretched;
-      need("scale-words", HTMLElement).textContent = scaleText(scale.unit, stretched);
+      describe();
       const changed = electrodes.find(({ label }) => label === changing);
       if (changed !== undefined) said.textContent = usedText(changed, electrodes);
       changing = null;

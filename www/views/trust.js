@@ -4,6 +4,7 @@ import { surroundingsOf } from "../draw/canvas.js";
 import { SvgPen, svgElement } from "../draw/pen.js";
 import { legendMarks, paintRegion, verdictMark } from "../draw/region.js";
 import { typeset } from "../text/figures.js";
+import { explainedOf, verdictOf } from "../session/explanations.js";
 import { drawnText, verdictParts } from "../text/trust.js";
 import { word } from "../text/words.js";
 import { make, need } from "./element.js";
@@ -16,22 +17,28 @@ import { dropOrphanedNote, withTerms } from "./terms.js";
 /** The time left is told from here on, when it says something. */
 const TOLD_MS = 700;
 
-/** What of the region is drawn into the views, by the boxes of its legend. @param {Trust | null | undefined} trust @returns {RegionMarks | null} */
-export function regionMarks(trust) {
-  if (!trust) return null;
-  /** @template T @param {keyof RegionMarks} kind @param {T} marks @param {T} none @returns {T} */
+/** What is drawn into the views besides the best fit, by the boxes of the legend. @param {SessionState} state @returns {RegionMarks} */
+export function regionMarks(state) {
+  const region = state.answer?.trust?.region;
+  const { alternatives, hand } = explainedOf(state);
+  /** @template T @param {string} kind @param {T} marks @param {T} none @returns {T} */
   const shown = (kind, marks, none) => (need(`region-${kind}`, HTMLInputElement).checked ? marks : none);
-  const { cloud, ellipsoid, noise_only: noise, repeats } = trust.region;
   return {
-    cloud: shown("cloud", cloud, []),
-    errors: shown("errors", ellipsoid, null),
-    noise: shown("noise", noise, null),
-    repeats: shown("repeats", repeats?.points ?? [], []),
+    cloud: shown("cloud", region?.cloud ?? [], []),
+    errors: shown("errors", region?.ellipsoid ?? null, null),
+    noise: shown("noise", region?.noise_only ?? null, null),
+    repeats: shown("repeats", region?.repeats?.points ?? [], []),
+    others: [
+      ...(alternatives?.kinds ?? []).flatMap(({ kind, dipoles }) =>
+        kind === "single" ? [] : dipoles.flatMap((dipole) => shown(kind, [{ kind, ...dipole }], [])),
+      ),
+      ...(hand === null ? [] : [{ kind: /** @type {const} */ ("hand"), position: hand.at, direction: hand.direction }]),
+    ],
   };
 }
 
 /** @param {string} id @param {{ text: string }[]} lines */
-function writeLines(id, lines) {
+export function writeLines(id, lines) {
   const list = need(id, HTMLElement);
   list.replaceChildren(...lines.map(({ text }) => {
     const line = make("li", "");
@@ -56,11 +63,7 @@ function writeCauses(causes) {
 }
 
 /** @param {Trust} trust */
-function writeTrust({ verdict, region, cautions }) {
-  writeLines("verdict-reasons", verdict?.reasons ?? []);
-  writeLines("verdict-hints", verdict?.hints ?? []);
-  need("hints-title", HTMLElement).hidden = !verdict?.hints.length;
-  need("reasons-title", HTMLElement).hidden = verdict === null;
+function writeTrust({ region, cautions }) {
   writeLines("trust-cautions", cautions.map((text) => ({ text })));
   const { repeats } = region;
   need("repeats", HTMLElement).hidden = repeats === null;
@@ -76,6 +79,13 @@ function writeTrust({ verdict, region, cautions }) {
 
 /** @param {Session} session */
 export function showTrust(session) {
+  /** @param {Trust["verdict"]} verdict */
+  function writeReasons(verdict) {
+    writeLines("verdict-reasons", verdict?.reasons ?? []);
+    writeLines("verdict-hints", verdict?.hints ?? []);
+    need("hints-title", HTMLElement).hidden = !verdict?.hints.length;
+    need("reasons-title", HTMLElement).hidden = verdict === null;
+  }
   const said = need("verdict-said", HTMLElement);
   const progress = need("drawn-progress", HTMLProgressElement);
   const [stop, go] = ["draw-stop", "draw-go"].map((id) => need(id, HTMLButtonElement));
@@ -99,7 +109,7 @@ export function showTrust(session) {
     return fresh ? null : ((spent / (done - begun.done)) * (total - done)) / 1000;
   }
 
-  /** @param {Trust["verdict"] | undefined} verdict @param {Populations["state"] | undefined} state */
+  /** @param {Trust["verdict"]} verdict @param {Populations["state"] | undefined} state */
   function writeVerdict(verdict, state) {
     if (verdict) {
       const [title, rest] = verdictParts(verdict);
@@ -117,9 +127,10 @@ export function showTrust(session) {
   function showState() {
     const { answer, populations } = session.read();
     const state = populations?.state;
+    const verdict = verdictOf(session.read());
     need("verdict", HTMLElement).hidden = !answer?.sheet;
-    said.classList.toggle("waits", !answer?.trust?.verdict && state === "done");
-    writeVerdict(answer?.trust?.verdict, state);
+    said.classList.toggle("waits", !verdict && state === "done");
+    writeVerdict(verdict, state);
     need("verdict-why", HTMLElement).hidden = !answer?.trust;
     const busy = state === "drawing" || state === "stopped";
     need("drawing-line", HTMLElement).hidden = !busy;
@@ -132,6 +143,10 @@ export function showTrust(session) {
 
   session.watch(({ populations }) => populations, showState);
   session.watch(({ answer }) => answer?.sheet, showState);
+  session.watch(verdictOf, (verdict) => {
+    showState();
+    if (verdict !== null || session.read().answer?.trust) writeReasons(verdict);
+  });
   session.watch(
     ({ answer }) => answer?.trust,
     (trust) => {
@@ -145,13 +160,22 @@ export function showTrust(session) {
 
   const legend = need("region-legend", HTMLElement);
   function writeLegend() {
-    const region = session.read().answer?.trust?.region;
-    legend.hidden = !region;
-    if (!region) return;
+    const state = session.read();
+    const region = state.answer?.trust?.region;
+    const { alternatives, hand } = explainedOf(state);
+    const known = (alternatives?.kinds ?? []).filter(({ dipoles }) => dipoles.length > 0).map(({ kind }) => String(kind));
+    const there = [
+      ...(region ? ["cloud", "errors"] : []),
+      ...(region?.noise_only ? ["noise"] : []),
+      ...(region?.repeats ? ["repeats"] : []),
+      ...known,
+      ...(hand === null ? [] : ["hand"]),
+    ];
+    legend.hidden = there.length === 0;
     const around = surroundingsOf(legend, false);
-    for (const place of legend.querySelectorAll("label")) {
-      const kind = /** @type {keyof RegionMarks} */ (place.dataset.marks);
-      place.hidden = kind === "noise" ? region.noise_only === null : kind === "repeats" && region.repeats === null;
+    for (const place of /** @type {NodeListOf<HTMLElement>} */ (legend.querySelectorAll("[data-marks]"))) {
+      const kind = /** @type {Parameters<typeof legendMarks>[0]} */ (place.dataset.marks);
+      place.hidden = !there.includes(kind);
       const picture = svgElement("svg", { width: 26, height: 10, "aria-hidden": "true", class: "swatch" });
       paintRegion(/** @type {any} */ (new SvgPen(picture)), ([x, y]) => ({ x, y }), legendMarks(kind), around);
       place.querySelector("svg")?.remove();
@@ -159,5 +183,7 @@ export function showTrust(session) {
     }
   }
   session.watch(({ answer }) => answer?.trust, writeLegend);
+  session.watch((state) => explainedOf(state).alternatives, writeLegend);
+  session.watch((state) => explainedOf(state).hand === null, writeLegend);
   matchMedia("(prefers-color-scheme: dark)").addEventListener("change", writeLegend);
 }

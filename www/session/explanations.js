@@ -1,0 +1,272 @@
+/**
+ * What is told of the chosen map beyond its trust: other explanations when they are asked for, what carries the fit and what
+ * would move it when nothing else is to be done, residual variance over the brain while it is looked at, the dipole by hand.
+ */
+
+/** @import { Pool } from "../engine/pool/pool.js" */
+/** @import { Fitting } from "./fitting.js" */
+
+/** @type {Explained} */
+export const UNEXPLAINED = {
+  key: -1, chosen: -1, alternatives: null, searching: false, influence: null, whatIf: null, landscape: null, hand: null, felt: null,
+};
+
+/** Nothing is asked unbidden before so long nothing has changed. */
+const IDLE_MS = 500;
+
+/** What is explained of the map in view; nothing of another one. @param {SessionState} state */
+export function explainedOf({ answer, explained }) {
+  return answer !== null && explained.key === answer.key && explained.chosen === answer.chosen ? explained : UNEXPLAINED;
+}
+
+/** The verdict of the map in view: with other explanations, once these are known. @param {SessionState} state */
+export function verdictOf(state) {
+  return explainedOf(state).alternatives?.verdict ?? state.answer?.trust?.verdict ?? null;
+}
+
+/** By a helper, so that what is asked by hand need not wait. @param {Pool} engine @param {WorkerTask} task */
+export function askHelper(engine, task) {
+  return engine.askAside(task).catch((fault) => {
+    // A helper that is lost says nothing about the maps.
+    if (!fault.code.startsWith("worker-")) throw fault;
+    return engine.ask(task);
+  });
+}
+
+/**
+ * @param {{ read: () => SessionState, write: (patch: Partial<SessionState>) => void,
+ *           watch: <P>(pick: (state: SessionState) => P, render: (part: P) => void) => void }} store
+ * @param {() => Pool | null} pool
+ * @param {(fault: unknown) => void} fail
+ * @param {Fitting} fitting
+ * @param {() => GivenPopulations | null} given reference populations of the present answer
+ */
+export function makeExplanations(store, pool, fail, fitting, given) {
+  /** @typedef {{ key: number, chosen: number }} Place */
+  /** @typedef {{ wish: number[] | null }} Wanted */
+  /** Other explanations of maps of one answer, with the populations that their verdicts rest on. */
+  let found = { key: -1, of: /** @type {Map<number, { alternatives: Alternatives, by: string }>} */ (new Map()) };
+  /** The last search that is waited for. */
+  let search = 0;
+  let timer = 0;
+  let idling = false;
+  /** Whether slices are looked at, and where they and the dipole are wanted: null at the best fit. */
+  let open = false;
+  /** @type {number[] | null} */
+  let wanted = null;
+  /** What was answered last. @type {{ hand: number[] | null, slices: number[] | null | undefined }} */
+  let shown = { hand: null, slices: undefined };
+  let following = false;
+  /** @type {number[] | null} */
+  let pointed = null;
+  let feeling = false;
+
+  /** @param {Place} of */
+  const isStill = ({ key, chosen }) => store.read().answer?.key === key && store.read().answer?.chosen === chosen;
+
+  /** Tells of a map, if it is still in view. @param {Place} of @param {Partial<Explained>} patch */
+  function tell(of, patch) {
+    if (isStill(of)) store.write({ explained: { ...explainedOf(store.read()), key: of.key, chosen: of.chosen, ...patch } });
+  }
+
+  /** @param {Place} of @param {any} fault */
+  function refused(of, fault) {
+    if (fault.code === "given-up") lookLater();
+    else if (isStill(of)) fail(fault);
+  }
+
+  /** Verdicts that rest on other explanations stand in the list too. */
+  function judge() {
+    const { answer } = store.read();
+    if (!answer?.verdicts || found.key !== answer.key) return;
+    const verdicts = [...answer.verdicts];
+    for (const [index, { alternatives }] of found.of) verdicts[index] = alternatives.verdict?.word ?? verdicts[index];
+    if (verdicts.some((one, at) => one !== answer.verdicts?.[at])) store.write({ answer: { ...answer, verdicts } });
+  }
+
+  /** @param {boolean} aloud whether somebody waits for it */
+  async function lookForOthers(aloud) {
+    const engine = pool();
+    const { answer } = store.read();
+    if (engine === null || !answer?.sheet) return;
+    const { key, chosen } = answer;
+    const populations = given();
+    const own = ++search;
+    if (aloud) tell(answer, { searching: true });
+    try {
+      /** @type {Alternatives | null} */
+      const alternatives = await askHelper(engine, { kind: "alternatives", key, index: chosen, populations });
+      if (alternatives === null || own !== search || found.key !== key) return;
+      found.of.set(chosen, { alternatives, by: populations?.name ?? "" });
+      tell(answer, { alternatives });
+      judge();
+    } catch (fault) {
+      if (own === search) refused(answer, fault);
+    } finally {
+      if (own === search) tell(answer, { searching: false });
+    }
+  }
+
+  /** What nobody has to ask for, one after the other. */
+  async function look() {
+    timer = 0;
+    const engine = pool();
+    const { answer, phase, arriving } = store.read();
+    if (idling || engine === null || !answer?.trust || phase === "busy" || arriving) return;
+    if (!fitting.isAtRest()) return lookLater();
+    const { key, chosen, count, fitted } = answer;
+    idling = true;
+    try {
+      const { influence, whatIf } = explainedOf(store.read());
+      if (influence === null) tell(answer, { influence: await askHelper(engine, { kind: "influence", key, index: chosen }) });
+      if (whatIf === null && isStill(answer)) tell(answer, { whatIf: await askHelper(engine, { kind: "what-if", key, index: chosen }) });
+      if (store.read().suspects?.key === key || !isStill(answer) || count < 2 || fitted < count) return;
+      /** @type {Suspects | null} */
+      const suspects = await askHelper(engine, { kind: "suspects", key });
+      if (store.read().answer?.key === key) store.write({ suspects: { key, ...(suspects ?? { sentence: "", electrodes: [] }) } });
+    } catch (fault) {
+      refused(answer, fault);
+    } finally {
+      idling = false;
+      if (!isStill(answer)) lookLater();
+    }
+  }
+
+  function lookLater() {
+    clearTimeout(timer);
+    timer = /** @type {any} */ (setTimeout)(look, IDLE_MS);
+  }
+
+  /** Asks for what is to be shown next, the dipole before the slices. @param {Pool} engine @param {Answer} answer */
+  async function step(engine, answer) {
+    const { key, chosen: index } = answer;
+    const at = wanted;
+    if (at !== null && at !== shown.hand) {
+      /** @type {Probe | null} */
+      const probe = await engine.ask({ kind: "probe", key, index, at, picture: true });
+      shown.hand = at;
+      if (probe === null || wanted === null || !isStill(answer)) return;
+      // The next step by a key goes on from where it ended.
+      if (wanted === at) wanted = shown.hand = probe.at;
+      tell(answer, { hand: { ...probe, kept: explainedOf(store.read()).hand?.kept ?? false }, felt: null });
+    } else {
+      shown.slices = at;
+      tell(answer, { landscape: await engine.ask({ kind: "landscape", key, index, at }) });
+    }
+  }
+
+  /** The latest wish is followed, and one question at most is on its way. */
+  async function follow() {
+    if (following) return;
+    following = true;
+    try {
+      for (;;) {
+        const engine = pool();
+        const { answer } = store.read();
+        const over = (wanted === null || wanted === shown.hand) && (!open || wanted === shown.slices);
+        if (engine === null || !answer?.sheet || over) return;
+        await step(engine, answer).catch((fault) => {
+          shown = { hand: wanted, slices: wanted };
+          refused(answer, fault);
+        });
+      }
+    } finally {
+      following = false;
+    }
+  }
+
+  function goBack() {
+    const { answer } = store.read();
+    wanted = shown.hand = null;
+    if (answer !== null) tell(answer, { hand: null, felt: null });
+    follow();
+  }
+
+  store.watch(
+    ({ answer }) => (answer === null ? "" : `${answer.key} ${answer.chosen}`),
+    () => {
+      const { answer } = store.read();
+      wanted = pointed = null;
+      shown = { hand: null, slices: undefined };
+      search++;
+      if (answer === null) return;
+      if (found.key !== answer.key) found = { key: answer.key, of: new Map() };
+      tell(answer, { alternatives: found.of.get(answer.chosen)?.alternatives ?? null });
+    },
+  );
+  store.watch(({ answer }) => answer?.sheet, follow);
+  store.watch(
+    ({ answer }) => answer?.trust,
+    (trust) => {
+      lookLater();
+      const own = found.of.get(store.read().answer?.chosen ?? -1);
+      // With more reference maps the verdict may be another one.
+      if (trust?.verdict && own !== undefined && own.by !== given()?.name) lookForOthers(false);
+    },
+  );
+  store.watch(({ answer }) => answer?.fitted, lookLater);
+  store.watch(({ answer }) => answer?.verdicts, judge);
+
+  return {
+    /** Looks for other explanations of the map in view. */
+    explain: () => lookForOthers(true),
+
+    /** Waits for them no more. */
+    stopExplaining() {
+      search++;
+      const { answer } = store.read();
+      if (answer !== null) tell(answer, { searching: false });
+    },
+
+    /** Whether residual variance over the brain is looked at. @param {boolean} now */
+    lookAtSlices(now) {
+      open = now;
+      if (now) follow();
+      else goBack();
+    },
+
+    /** Puts the dipole to a place, in the axes and the unit of a figure. @param {number[]} at */
+    moveDipole(at) {
+      wanted = at;
+      follow();
+    },
+
+    /** Moves it on from where it was moved last. @param {number[]} by */
+    moveDipoleBy(by) {
+      const from = wanted ?? explainedOf(store.read()).landscape?.best;
+      if (from !== undefined) this.moveDipole(from.map((part, axis) => part + by[axis]));
+    },
+
+    /** The dipole by hand stays while something else is looked at. */
+    keepDipole() {
+      const { answer } = store.read();
+      const { hand } = explainedOf(store.read());
+      if (answer !== null && hand !== null) tell(answer, { hand: { ...hand, kept: true } });
+    },
+
+    /** Back to the best fit. */
+    returnDipole: goBack,
+
+    /** Tells of a place without moving anything; null leaves it. @param {number[] | null} at */
+    async feel(at) {
+      pointed = at;
+      const { answer } = store.read();
+      if (answer === null) return;
+      if (at === null && explainedOf(store.read()).felt !== null) tell(answer, { felt: null });
+      if (feeling) return;
+      feeling = true;
+      try {
+        for (let last = null; pointed !== null && pointed !== last; ) {
+          last = pointed;
+          /** @type {Probe | null} */
+          const felt = await pool()?.ask({ kind: "probe", key: answer.key, index: answer.chosen, at: last, picture: false });
+          if (pointed !== null) tell(answer, { felt });
+        }
+      } catch (fault) {
+        refused(answer, fault);
+      } finally {
+        feeling = false;
+      }
+    },
+  };
+}
