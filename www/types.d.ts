@@ -235,7 +235,7 @@ interface Probe {
   picture: Picture | null;
 }
 
-/** Electrodes that hold the largest residual of many maps; none where none stands out. */
+/** Electrodes that hold strikingly much of what is left over of many maps, share in percent; none where none stands out. */
 interface Suspects {
   sentence: string;
   electrodes: { label: string; share: string; count: number; sentence: string }[];
@@ -656,7 +656,7 @@ interface Sheet {
 interface GlueStudy {
   readonly count: number;
   head(): ReportHead;
-  electrodes(): object[];
+  electrodes(): InwardReport["electrodes"];
   notes(): ReportNote[];
   understood(): Understood;
   preamble(): InwardReport;
@@ -747,7 +747,7 @@ declare const ANSWER_MARKUP: Markup[];
 /** A study as scripts see it; what stands after `close` is for the page's worker. */
 interface Study {
   readonly head: ReportHead;
-  readonly electrodes: object[];
+  readonly electrodes: InwardReport["electrodes"];
   readonly notes: ReportNote[];
   readonly understood: Understood;
   readonly count: number;

@@ -302,13 +302,14 @@ async function answerTask(message) {
       return self.postMessage({ id, value: studyOf(message.key).probe(message.index, message.at, message.picture) });
     case "suspects": {
       const study = studyOf(message.key);
-      const leaders = new Uint16Array(study.count);
+      const used = study.electrodes.filter((one) => one.used).length;
+      const all = new Float32Array(used * study.count);
       await inSlices(message.key, study, { first: 0, last: study.count }, (done, milliseconds) => {
-        const some = study.leaders(done, study.count, milliseconds);
-        leaders.set(some, done);
-        return some.length;
+        const some = study.unshared(done, study.count, milliseconds);
+        all.set(some, used * done);
+        return some.length / used;
       });
-      return self.postMessage({ id, value: study.suspects(leaders) });
+      return self.postMessage({ id, value: study.suspects(all) });
     }
     case "close":
       closeStudy(message.key);
