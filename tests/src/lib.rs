@@ -24,6 +24,7 @@ mod session;
 mod shapes;
 mod surroundings;
 mod tables;
+pub mod truth;
 mod variant;
 
 pub use attack::attack;

@@ -4,32 +4,26 @@ use inward_core::assess::{Bar, Judged, Reference, Word, usual_spacing_deg};
 use inward_core::fit::Fitter;
 use inward_core::forward::LeadField;
 use inward_core::head::{ShellSpec, Shells};
-use inward_core::math::{Ellipsoid, Vec3, centre, dot, f_quantile};
+use inward_core::math::{Ellipsoid, Vec3, centre, f_quantile};
 use inward_core::simulate::{Background, HeadErrors, Kind, Noise, Orientation, Population, Refits, SourceRule};
-use inward_tests::{Draw, Electrodes, PlainSeries};
+use inward_tests::truth::{BRAIN, Truth, add, source, unit};
+use inward_tests::{Draw, Electrodes};
 
-const BRAIN: f64 = 79.0 / 88.0;
 const RULE: SourceRule = SourceRule { max_eccentricity: 0.9, floor: [-0.5, 0.25], orientation: Orientation::Isotropic };
 const BACKGROUND: Background = Background { sources: 30, rule: RULE };
 
 /// A head as it is modelled, with fits and errors.
 struct Bench {
-    electrodes: Electrodes,
+    truth: Truth,
     fitter: Fitter,
     errors: HeadErrors,
-    /// Heads as they may be: skull ratios from 15 to 40.
-    heads: Vec<PlainSeries>,
 }
 
 impl Bench {
     fn new(count: usize) -> Self {
-        let electrodes = Electrodes::set(count);
+        let truth = Truth::new(Electrodes::set(count));
         let shells = Shells::standard();
-        let directions = electrodes.directions.clone();
-        let ratios = (0..12).map(|k| 15.0 * (40.0f64 / 15.0).powf((f64::from(k) + 0.5) / 12.0));
-        let head = |ratio: f64| {
-            PlainSeries::new(&[(BRAIN, 0.33), (81.0 / 88.0, 1.79), (85.0 / 88.0, 0.33 / ratio), (1.0, 0.33)], 88.0)
-        };
+        let directions = truth.electrodes.directions.clone();
         Self {
             fitter: Fitter::new(LeadField::new(&shells, 88.0, directions.clone())),
             errors: HeadErrors {
@@ -39,8 +33,7 @@ impl Bench {
                 skull_ratio: Some([15.0, 40.0]),
                 sphere: None,
             },
-            heads: ratios.map(head).collect(),
-            electrodes,
+            truth,
         }
     }
 
@@ -54,54 +47,6 @@ impl Bench {
             seed: 1,
         }
     }
-
-    /// Electrodes off by 5 mm along the scalp (root mean square).
-    fn misplaced(&self, draw: &mut Draw) -> Vec<Vec3> {
-        let moved = |e: &Vec3| {
-            let step = Vec3::new(draw.normal(), draw.normal(), draw.normal()) * (5.0 / 88.0 / 2f64.sqrt());
-            (*e + step - *e * e.dot(step)).unit().unwrap()
-        };
-        self.electrodes.directions.iter().map(moved).collect()
-    }
-
-    /// The average-referenced map of a dipole in the head of this number.
-    fn map(&self, head: usize, electrodes: &[Vec3], position: Vec3, moment: Vec3) -> Vec<f64> {
-        let mut map: Vec<f64> =
-            self.heads[head].lead(position, electrodes, 1e-7).iter().map(|row| row.dot(moment)).collect();
-        centre(&mut map);
-        map
-    }
-
-    /// Noise of 30 weak sources in the same head, of unit length.
-    fn background(&self, head: usize, electrodes: &[Vec3], draw: &mut Draw) -> Vec<f64> {
-        let mut sum = vec![0.0; electrodes.len()];
-        for _ in 0..30 {
-            let map = self.map(head, electrodes, source(draw), draw.direction());
-            sum.iter_mut().zip(map).for_each(|(sum, value)| *sum += value);
-        }
-        unit(sum)
-    }
-}
-
-/// A position in scalp radii, even in the upper part of the brain up to eccentricity 0.9.
-fn source(draw: &mut Draw) -> Vec3 {
-    loop {
-        let p = Vec3::new(draw.between(-0.9, 0.9), draw.between(-0.9, 0.9), draw.between(-0.9, 0.9));
-        if p.norm() <= 0.9 && p[2] >= -0.5 + 0.25 * p[1] {
-            return p * BRAIN;
-        }
-    }
-}
-
-fn unit(mut map: Vec<f64>) -> Vec<f64> {
-    let length = dot(&map, &map).sqrt();
-    map.iter_mut().for_each(|value| *value /= length);
-    map
-}
-
-fn add(map: &mut [f64], noise: &[f64], decibels: f64) {
-    let size = (dot(map, map) * 10f64.powf(-decibels / 10.0)).sqrt();
-    map.iter_mut().zip(noise).for_each(|(value, noise)| *value += size * noise);
 }
 
 /// The profile region RSS ≤ RSS_min (1 + 3F/(N − 7)) under white noise holds 95 % of the truths: 93 to 97 %, with three
@@ -165,10 +110,10 @@ fn region_holds_the_truth(count: usize) {
         let (mut held, mut by_noise) = (0, 0);
         let mut volumes = Vec::new();
         for _ in 0..trials() {
-            let (head, electrodes) = (draw.below(bench.heads.len()), bench.misplaced(&mut draw));
+            let (head, electrodes) = (draw.below(bench.truth.heads.len()), bench.truth.misplaced(&mut draw));
             let position = source(&mut draw);
-            let mut map = bench.map(head, &electrodes, position, draw.direction());
-            let noise = bench.background(head, &electrodes, &mut draw);
+            let mut map = bench.truth.map(head, &electrodes, position, draw.direction());
+            let noise = bench.truth.background(head, &electrodes, &mut draw);
             add(&mut map, &noise, decibels);
             let fit = bench.fitter.fit(&map).unwrap();
             let tangent = bench.fitter.tangent(&fit);
@@ -303,7 +248,7 @@ impl Court {
 
     fn word(&self, map: &[f64]) -> Word {
         let fit = self.bench.fitter.fit(map).unwrap();
-        let directions = &self.bench.electrodes.directions;
+        let directions = &self.bench.truth.electrodes.directions;
         let bar = Bar {
             references: self.references.each_ref(),
             rule: RULE,
@@ -341,17 +286,17 @@ fn planted_truths_are_judged_as_they_are() {
     for count in [32, 71] {
         let court = Court::new(count);
         let bench = &court.bench;
-        let plain = bench.electrodes.directions.clone();
+        let plain = bench.truth.electrodes.directions.clone();
         let nominal = 5;
         let all =
             [Word::Dipolar, Word::Undecided, Word::NotDipolar, Word::Edge, Word::BelowTheBrain, Word::LoneElectrode];
-        let exact = court.shares(300, &all, |draw| bench.map(nominal, &plain, source(draw), draw.direction()));
+        let exact = court.shares(300, &all, |draw| bench.truth.map(nominal, &plain, source(draw), draw.direction()));
         let off = court.shares(1000, &all, |draw| {
-            let electrodes = bench.misplaced(draw);
-            bench.map(nominal, &electrodes, source(draw), draw.direction())
+            let electrodes = bench.truth.misplaced(draw);
+            bench.truth.map(nominal, &electrodes, source(draw), draw.direction())
         });
         let twenty = court.shares(300, &all, |draw| {
-            let maps = (0..20).map(|_| bench.map(nominal, &plain, source(draw), draw.direction()));
+            let maps = (0..20).map(|_| bench.truth.map(nominal, &plain, source(draw), draw.direction()));
             maps.reduce(|sum, map| sum.iter().zip(map).map(|(a, b)| a + b).collect()).unwrap()
         });
         let noise = court.shares(300, &all, |draw| draw.noise(count));
@@ -366,7 +311,8 @@ fn planted_truths_are_judged_as_they_are() {
         lone[7] = 5.0;
         assert_eq!(court.word(&lone), Word::LoneElectrode);
         // Two eyes that look up: low at the front, where there is no brain.
-        let eyes = [-0.3, 0.3].map(|x| bench.map(nominal, &plain, Vec3::new(x, 0.68, -0.35), Vec3::new(0.0, 0.8, 0.6)));
+        let eyes =
+            [-0.3, 0.3].map(|x| bench.truth.map(nominal, &plain, Vec3::new(x, 0.68, -0.35), Vec3::new(0.0, 0.8, 0.6)));
         let word = court.word(&eyes[0].iter().zip(&eyes[1]).map(|(a, b)| a + b).collect::<Vec<_>>());
         assert!([Word::BelowTheBrain, Word::Edge].contains(&word), "{count}: {word:?}");
     }

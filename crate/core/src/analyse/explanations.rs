@@ -2,7 +2,7 @@
 
 use super::Study;
 use crate::fit::{Arrangement, Fit, PairSearch, Stopped, Tangent};
-use crate::math::Vec3;
+use crate::math::{Vec3, dot, mean};
 use crate::placement::Evidence;
 use crate::report::{
     AlternativeReport, Alternatives, Decision, Explanation, FittedMap, LEAST_APART_MM, MIRRORED_PART, MOST_OPPOSED,
@@ -67,7 +67,9 @@ impl Study {
         let second = self.fitter.second(&values, &fit);
         let mut tried = self.try_pairs(&values, &fit);
         let excess = second.as_ref().map(|second| second.residual_variance - fit.residual_variance);
-        let elsewhere = self.against_single_dipoles(&fit, excess, &mut tried);
+        let tangent = self.fitter.tangent(&fit);
+        let errors_leave = self.errors_leave(&fit, &tangent);
+        let elsewhere = self.against_single_dipoles(&fit, &tangent, errors_leave, excess, &mut tried);
         let gains = |one: &Tried| one.residual_variance.map(|rv| fit.residual_variance - rv);
         let mirrored_falls_short = match (gains(&tried[0]), gains(&tried[1])) {
             (Some(mirrored), Some(free)) => tried[1].refused.is_none() && mirrored < MIRRORED_PART * free,
@@ -187,12 +189,17 @@ impl Study {
     }
 
     /// Parametric bootstrap (Efron & Tibshirani 1993, An Introduction to the Bootstrap, §6.5) of the single dipole: maps that
-    /// it makes in heads that are off, with noise, are explained in the same ways. What counts is by how much residual
-    /// variance falls: where errors of the head leave more than the map's fit does, it falls by more.
-    fn against_single_dipoles(&self, fit: &Fit, excess: Option<f64>, tried: &mut [Tried]) -> Tally {
-        let tangent = self.fitter.tangent(fit);
+    /// it makes in heads that are off, with noise, are explained in the same ways.
+    fn against_single_dipoles(
+        &self,
+        fit: &Fit,
+        tangent: &Tangent,
+        errors_leave: f64,
+        excess: Option<f64>,
+        tried: &mut [Tried],
+    ) -> Tally {
         let mut elsewhere = Tally::default();
-        for map in self.refits().maps(&self.fitter, fit, &tangent, self.noise()) {
+        for map in self.refits().maps(&self.fitter, fit, tangent, self.noise()) {
             let Some(single) = self.fitter.follow(&map.map, fit.position) else { continue };
             if let (Some(excess), Some(above)) = (excess, self.above(&map.map, fit, &single)) {
                 elsewhere.add(above >= excess);
@@ -200,11 +207,22 @@ impl Study {
             for one in tried.iter_mut().filter(|one| one.refused.is_none() && !one.tally.decided()) {
                 let Some(rv) = one.residual_variance else { continue };
                 let pair = self.pairs().fit(&self.fitter, &map.map, one.arrangement, single.position);
-                let gain = pair.map_or(0.0, |pair| single.residual_variance - pair.residual_variance);
-                one.tally.add(gain >= fit.residual_variance - rv);
+                let gained =
+                    pair.map_or(0.0, |pair| gain(single.residual_variance, pair.residual_variance, errors_leave));
+                one.tally.add(gained >= gain(fit.residual_variance, rv, errors_leave));
             }
         }
         elsewhere
+    }
+
+    /// What errors of the head alone leave of the map of a single dipole, on average over the drawn heads.
+    fn errors_leave(&self, fit: &Fit, tangent: &Tangent) -> f64 {
+        let share = |map: Vec<f64>| {
+            let left = tangent.left(&map);
+            dot(&left, &left) / dot(&map, &map).max(f64::MIN_POSITIVE)
+        };
+        let maps = self.refits().maps(&self.fitter, fit, tangent, Noise::Sd(0.0));
+        mean(&maps.map(|simulated| share(simulated.map)).collect::<Vec<_>>())
     }
 
     /// How far a simulated map's residual variance at the place that it comes from lies above its least.
@@ -236,6 +254,12 @@ impl Study {
         let moment: Vec3 = fit.moment * self.sign(index);
         self.equivalent_dipole(fit, moment, map.activation_sd)
     }
+}
+
+/// By how much residual variance falls, over what is left then and what errors of the head leave in any case: a fall that
+/// these explain is none, however little is left.
+fn gain(single: f64, pair: f64, errors_leave: f64) -> f64 {
+    (single - pair) / (pair + errors_leave).max(f64::MIN_POSITIVE)
 }
 
 /// Values that must be left besides the numbers that are fitted.

@@ -234,11 +234,11 @@ impl Study {
     /// Electrodes that hold strikingly much of what is left over, from [`Self::unshared`] of all maps; `None` for fewer than
     /// ten that leave something over.
     pub fn suspects(&self, unshared: &[f32]) -> Option<Suspects> {
-        Some(Suspects::new(&self.suspects_of(unshared)?))
+        Some(Suspects::new(&self.suspect_reports(unshared)?))
     }
 
     /// The same in numbers.
-    pub(super) fn suspects_of(&self, unshared: &[f32]) -> Option<Vec<SuspectReport>> {
+    pub fn suspect_reports(&self, unshared: &[f32]) -> Option<Vec<SuspectReport>> {
         let electrodes = self.fitter.field().count();
         let (mut sums, mut leads, mut maps) = (vec![0.0f64; electrodes], vec![0usize; electrodes], 0usize);
         for shares in unshared.chunks_exact(electrodes).filter(|shares| !shares[0].is_nan()) {

@@ -269,7 +269,7 @@ impl Study {
             return Vec::new();
         }
         let unshared = self.unshared(0..self.count()).unwrap_or_default();
-        self.suspects_of(&unshared).unwrap_or_default()
+        self.suspect_reports(&unshared).unwrap_or_default()
     }
 
     /// Values of a map and its fit, without a turned sign.

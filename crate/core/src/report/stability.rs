@@ -320,14 +320,11 @@ impl WhatIf {
         };
         let rows: Vec<WhatIfWords> = found.iter().map(words).collect();
         let far = |a: &'_ &WhatIfWords, b: &'_ &WhatIfWords| a.shift_mm.total_cmp(&b.shift_mm);
-        let skull = found
-            .iter()
-            .zip(&rows)
-            .filter(|((change, _), _)| matches!(change, Change::Skull(_)))
-            .map(|(_, row)| row)
-            .max_by(far);
+        let unseen = |row: &&WhatIfWords| row.shift_mm >= NOTABLE_MM && row.rv_change.abs() <= UNSEEN_RV;
+        let skulls = found.iter().zip(&rows).filter(|((change, _), _)| matches!(change, Change::Skull(_)));
+        let skull = skulls.map(|(_, row)| row).filter(unseen).max_by(far);
         let sentence = match (skull, rows.iter().max_by(far)) {
-            (Some(skull), _) if skull.shift_mm >= NOTABLE_MM && skull.rv_change.abs() <= UNSEEN_RV => format!(
+            (Some(skull), _) => format!(
                 "With a {} the position would lie {} mm away, and residual variance would not show it: {} instead of {} %.",
                 skull.label,
                 millimetres(skull.shift_mm),
