@@ -96,20 +96,6 @@ fn a_planted_mirrored_pair_is_found_and_preferred() {
             let found = map.alternatives.clone().unwrap();
             let pair = found.iter().find(|one| one.kind == Explanation::MirroredPair).unwrap();
             planted += 1;
-            println!(
-                "{count}, {index}: single {:.2} %, {:?}",
-                100.0 * map.residual_variance,
-                found
-                    .iter()
-                    .map(|one| (
-                        one.residual_variance.map(|rv| (1e4 * rv).round() / 100.0),
-                        one.share_of_single_as_large,
-                        one.draws,
-                        one.decision,
-                        one.refused
-                    ))
-                    .collect::<Vec<_>>()
-            );
             if pair.decision == Decision::Preferred {
                 preferred += 1;
                 let right = pair.dipoles.iter().find(|dipole| dipole.canonical_mm[0] > 0.0).unwrap();
@@ -374,7 +360,6 @@ fn a_planted_bad_electrode_is_named() {
         };
         let named = |maps: &[Vec<f64>]| suspects(&study(&truth.electrodes, maps, json!({})));
         let (clean, noisy) = (named(&table(false)), named(&table(true)));
-        println!("{count}: {clean:?} {noisy:?}");
         assert!(clean.is_empty(), "{count}: {clean:?}");
         let labels: Vec<&str> = noisy.iter().map(|one| one.label.as_str()).collect();
         assert_eq!(labels, [bad], "{count}: {noisy:?}");

@@ -37,7 +37,7 @@ const FEWEST_MAPS: usize = 10;
 /// practice, no source; in two open recordings with one channel of five times its neighbours' noise it holds 0.11 to 0.20 of
 /// 61 electrodes.
 const SUSPECT_SHARE: f64 = 0.1;
-const SUSPECT_TIMES: f64 = 4.0;
+const SUSPECT_TIMES: f64 = 3.0;
 
 /// Residuals below this are rounding.
 const NOTHING_LEFT: f64 = 1e-9;

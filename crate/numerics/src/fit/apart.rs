@@ -6,20 +6,21 @@ use super::{Fit, Fitter, grid, normalise};
 use crate::forward::LeadField;
 use crate::math::Vec3;
 
-/// Starts from which separate minima are looked for.
+/// Peaks of the grid from which separate minima are looked for.
 const STARTS: usize = 12;
 
 impl Fitter {
     /// The best minimum of a map that lies apart from its fit, by the distance that starts keep from each other at least.
-    /// `None` if none of twelve starts leads to one.
+    /// `None` if none of the grid's twelve best peaks leads to
+    /// one.
     pub fn second(&self, map: &[f64], fit: &Fit) -> Option<Fit> {
         let (map, size) = normalise(map)?;
         let region = Region { reach: self.field.reach(), step: self.grid.step() };
         let apart = |other: &Fit| (other.position - fit.position).norm() > grid::SEPARATION * region.step;
-        let mut explained = self.grid.explained(&[&map]).pop()?;
+        let explained = self.grid.explained(&[&map]).pop()?;
         let mut rough = Objective::new(&self.rough, &map);
-        let minima = self.grid.starts(&mut explained, STARTS).into_iter();
-        let minima = minima.filter_map(|start| refine(&mut rough, start.position, region, SINGLE, &[])).filter(apart);
+        let minima = self.grid.peaks(&explained).into_iter().take(STARTS);
+        let minima = minima.filter_map(|start| refine(&mut rough, start, region, SINGLE, &[])).filter(apart);
         let least = |a: Fit, b: Fit| if b.residual_variance < a.residual_variance { b } else { a };
         let found = minima.reduce(least)?;
         let mut exact = Objective::new(self.field.field(), &map);

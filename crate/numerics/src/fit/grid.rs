@@ -93,6 +93,18 @@ impl Grid {
         starts
     }
 
+    /// Points that explain more than any within the distance of starts from each other: the best one of each basin, best
+    /// first.
+    pub(super) fn peaks(&self, explained: &Explained) -> Vec<Vec3> {
+        let shares: Vec<f32> = explained.iter().flat_map(|shares| shares.to_array()).take(self.points.len()).collect();
+        let mut order: Vec<usize> = (0..shares.len()).collect();
+        order.sort_by(|a, b| shares[*b].total_cmp(&shares[*a]));
+        let apart = SEPARATION * self.step;
+        let at = |rank: usize| self.points[order[rank]];
+        let is_peak = |rank: &usize| (0..*rank).all(|better| (at(better) - at(*rank)).norm() > apart);
+        (0..order.len()).filter(is_peak).map(at).collect()
+    }
+
     /// Strikes out the points near a start; the largest of the others in each lane.
     #[inline(never)]
     fn most_away(&self, explained: &mut Explained, start: Vec3) -> Single {
