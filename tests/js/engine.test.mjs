@@ -45,13 +45,13 @@ function assertPlain(value, path) {
 }
 
 const KEYS = {
-  report: "electrodes format head inputs maps notes populations program settings understood version",
+  report: "electrodes format head inputs maps notes populations program settings suspects understood version",
   program: "build name version",
   input: "name sha256",
   head: "axes centre_is_fitted centre_mm fit_max_mm fit_rms_mm name radius_is_fitted radius_mm shells unusual",
   shell: "conductivity_s_per_m outer_radius_mm tissue",
   electrode: "label position_mm used",
-  map: "activation_sd adjusted_rv degrees_of_freedom dipole fit flipped measured name populations projected region residual residual_variance variance_explained verdict",
+  map: "activation_sd adjusted_rv alternatives degrees_of_freedom dipole fit flipped influence measured name populations projected region residual residual_variance variance_explained verdict what_if",
   dipole:
     "at_boundary canonical_direction canonical_mm depth_mm direction eccentricity nearest_site polarity position_mm radial_share side strength strength_comparable strength_unit",
   fit: "evaluations stopped_because",
@@ -682,4 +682,49 @@ test("time points give a response, dipoles of several people groups", () => {
   const mean = engine.meanRaster([[measured[0], rim_degrees], [turned, rim_degrees]], size);
   assert.deepEqual(mean, measured[0]);
   assert.equal(thrown(() => engine.meanRaster([[measured[0], rim_degrees]], 17)).code, "settings-unknown");
+});
+
+test("other explanations, influence, other heads and slices are told of a map, and nothing of one that is not fitted", () => {
+  const study = engine.open({ electrodes, maps });
+  const { maps: fits, electrodes: sites } = engine.analyse({ electrodes, maps, settings: { assess: ["alternatives", "influence", "what_if"] } });
+  const rv = fits[0].residual_variance;
+  const { kinds, verdict, notes } = study.alternatives(0);
+  assert.equal(verdict, null, "no populations are drawn");
+  assert.ok(notes.length > 0);
+  assert.deepEqual(kinds.map(({ kind }) => kind), ["single", "second-minimum", "mirrored-pair", "two-dipoles"]);
+  kinds.slice(1).forEach((kind, index) => assert.equal(kind.decision, fits[0].alternatives[index].decision));
+  assert.ok(kinds.every(({ cells, sentence }) => cells.length === 7 && sentence.endsWith(".")));
+
+  const influence = study.influence(0);
+  const used = sites.filter((electrode) => electrode.used).length;
+  assert.equal(influence.electrodes.length, used);
+  const farthest = fits[0].influence.reduce((a, b) => (b.shift_mm > a.shift_mm ? b : a));
+  assert.equal(influence.electrodes[0].label, farthest.label);
+
+  const whatIf = study.whatIf(0);
+  assert.deepEqual(whatIf.rows.map(({ change }) => change), fits[0].what_if.map(({ change }) => change));
+  assert.ok(whatIf.rows.some(({ change, shift_mm }) => change === "skull-80" && shift_mm > 3));
+
+  const landscape = study.landscape(0);
+  assert.equal(landscape.slices.length, 3);
+  for (const { rv: slice, contours } of landscape.slices) {
+    assert.equal(slice.length, landscape.size ** 2);
+    assert.ok(slice.every((value) => Number.isNaN(value) || value >= rv - 1e-6));
+    assert.ok(contours.length > 0);
+  }
+  const there = study.probe(0, landscape.best, true);
+  assert.ok(Math.abs(there.rv - rv) < 1e-9);
+  assert.ok(there.picture !== null && study.probe(0, [0.1, 0.2, 0.3], false).picture === null);
+  const lost = study.probe(0, [NaN, 0, 0], false);
+  assert.deepEqual(lost.at, [0, 0, 0]);
+
+  const shares = study.unshared(0, study.count, Infinity);
+  assert.equal(shares.length, used * study.count);
+  assert.equal(study.suspects(shares), null, "six maps are too few");
+  study.close();
+
+  const flat = engine.open({ electrodes, maps: maps.split("\n").map((line, row) => line && `${line}\t${row ? 1 : "flat"}`).join("\n") });
+  const last = flat.count - 1;
+  for (const told of [flat.alternatives(last), flat.influence(last), flat.whatIf(last), flat.landscape(last), flat.probe(last, [0, 0, 0], true)]) assert.equal(told, null);
+  flat.close();
 });

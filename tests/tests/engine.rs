@@ -95,7 +95,7 @@ fn native_and_wasm_give_equal_bits() {
         ),
     ];
     let trust = json!({
-        "assess": ["region", "populations", "verdict"], "sources": { "draws": 1000, "seed": 7 }, "noise": { "singleTrialSd": 9.5, "trials": 100 },
+        "assess": ["region", "populations", "verdict", "alternatives", "influence", "what_if"], "sources": { "draws": 1000, "seed": 7 }, "noise": { "singleTrialSd": 9.5, "trials": 100 },
     });
     cases.push(case(Some(&example("watch_electrodes.tsv")), &example("watch_maps.tsv"), trust));
     // A head that lies obliquely in its axes, and its mirror image.
@@ -105,7 +105,7 @@ fn native_and_wasm_give_equal_bits() {
     let mirrored: Vec<Vec3> = oblique.iter().map(|p| Vec3::new(p[0], -p[1], p[2])).collect();
     let maps = Mixture::many(&series, &set.directions, 0.85, 20, &mut draw);
     let columns: Vec<(&str, &[f64])> = maps.iter().map(|map| ("m", map.values.as_slice())).collect();
-    cases.push(case(Some(&set.table(&oblique)), &set.maps(&columns), json!({})));
+    cases.push(case(Some(&set.table(&oblique)), &set.maps(&columns), json!({ "assess": ["influence", "what_if"] })));
     cases.push(case(Some(&set.table(&mirrored)), &set.maps(&columns), json!({ "mirror": true })));
     cases.push(case(Some(&set.table(&oblique)), &set.maps(&columns), json!({ "axes": "front-left-up" })));
     for (count, unit) in [(19, 1.0), (32, 0.1), (71, 0.001), (128, 1.0), (256, 1.0)] {

@@ -142,6 +142,46 @@ fn trust(unit: Duration) {
         index = (index + 1) % study.count();
         drop(black_box(study.assess(index, &[Assessment::Region])));
     });
+    explanations(&study, unit);
+}
+
+/// What else may explain a map, what carries its fit and would move it, residual variance over the brain.
+fn explanations(study: &Study, unit: Duration) {
+    let mut index = 0;
+    let mut next = || {
+        index = (index + 1) % study.count();
+        match study.fit(index) {
+            Ok(MapReport::Fitted(map)) => Some((index, map)),
+            _ => None,
+        }
+    };
+    drop(black_box(next().and_then(|(index, map)| study.alternatives(index, &map))));
+    drop(black_box(next().and_then(|(index, map)| study.what_if(index, &map))));
+    row(71, "other explanations of a map", unit, 10, || {
+        drop(black_box(next().and_then(|(index, map)| study.alternatives(index, &map))));
+    });
+    row(71, "influence of each electrode", unit, 40, || {
+        drop(black_box(next().and_then(|(index, map)| study.influence(index, &map))));
+    });
+    row(71, "other heads", unit, 40, || {
+        drop(black_box(next().and_then(|(index, map)| study.what_if(index, &map))));
+    });
+    row(71, "three slices", unit, 10, || {
+        drop(black_box(next().and_then(|(index, map)| study.landscape(index, &map, None))));
+    });
+    let Some((index, map)) = next() else { return };
+    let mut step = 0.0;
+    let mut moves = [0; 200].map(|_| {
+        step += 0.004;
+        let at = Vec3::new(step - 0.4, 0.3 - step, 0.4);
+        let start = Instant::now();
+        if let Some((told, by_hand)) = study.probe(index, &map, black_box(at)) {
+            black_box((told, study.picture(&by_hand)));
+        }
+        start.elapsed()
+    });
+    moves.sort();
+    println!("  71 electrodes  dipole moved by hand, with its maps: median {:.2} ms", moves[100].as_secs_f64() * 1e3);
 }
 
 /// One map from text to picture.
