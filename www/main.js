@@ -24,6 +24,7 @@ import { showMaps } from "./views/maps.js";
 import { showNotes } from "./views/notes.js";
 import { showNumbers } from "./views/numbers.js";
 import { showOverview } from "./views/overview.js";
+import { showResponse } from "./views/response.js";
 import { showShares } from "./views/shares.js";
 import { showSign } from "./views/sign.js";
 import { showStatus } from "./views/status.js";
@@ -76,6 +77,7 @@ for (const show of [
   showNumbers,
   showElectrodes,
   showHead,
+  showResponse,
   showShares,
   showAllDipoles,
   showMatching,

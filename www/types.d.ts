@@ -687,8 +687,8 @@ interface GlueStudy {
   unshared(first: number, last: number, milliseconds: number): Float32Array;
   suspects(unshared: Float32Array): Suspects | null;
   sheet(index: number): Sheet;
-  /** Null unless the maps are time points. */
-  response(): TimeCourse | null;
+  /** Null unless the maps are time points. Fits made before: position in scalp radii, strength, residual variance; NaN for none. */
+  response(fits?: Float64Array): TimeCourse | null;
   /** Of the time points from `first` to `last`, both included. */
   fixed(first: number, last: number): FixedDipole | null;
   /** The same tables under other settings; nothing is read again. */
@@ -792,8 +792,8 @@ interface Study {
   /** Null for fewer than ten maps. */
   suspects(unshared: Float32Array): Suspects | null;
   sheet(index: number): Sheet;
-  /** Null unless the maps are time points. */
-  response(): TimeCourse | null;
+  /** Null unless the maps are time points. Fits made before: position in scalp radii, strength, residual variance; NaN for none. */
+  response(fits?: Float64Array): TimeCourse | null;
   /** Of the time points from `first` to `last`, both included. */
   fixed(first: number, last: number): FixedDipole | null;
 }
@@ -919,6 +919,10 @@ type WorkerTask =
   | { kind: "landscape"; key: number; index: number; at: number[] | null }
   | { kind: "probe"; key: number; index: number; at: number[]; picture: boolean }
   | { kind: "suspects"; key: number }
+  | { kind: "response"; key: number; fits: Float64Array }
+  | { kind: "fixed"; key: number; first: number; last: number }
+  | { kind: "groups"; request: GroupsRequest }
+  | { kind: "mean-raster"; rasters: [Float32Array, number][]; size: number }
   | { kind: "close"; key: number };
 
 /** `named`: requests of the studies that the task needs and the worker does not hold. */

@@ -155,14 +155,14 @@ fn a_dipole_opens_its_map(browser: Browser) {
 
     // Where the mouse finds a dipole, a click chooses it.
     let box_ = page.value(
-        "const b = document.querySelector('#dipoles-above-view').getBoundingClientRect(); return [b.width, b.height]",
+        "const b = document.querySelector('#dipole-views-above').getBoundingClientRect(); return [b.width, b.height]",
     );
     let half = (box_[0].as_f64().unwrap() / 2.0) as i64;
     'found: for y in (-half..half).step_by(16) {
         for x in (-half..half).step_by(16) {
-            page.hover("#dipoles-above-view", x, y);
-            if page.value("return document.querySelector('#dipoles-above-view').style.cursor") == json!("pointer") {
-                page.click_at("#dipoles-above-view", x, y);
+            page.hover("#dipole-views-above", x, y);
+            if page.value("return document.querySelector('#dipole-views-above').style.cursor") == json!("pointer") {
+                page.click_at("#dipole-views-above", x, y);
                 if named(&page) != "a3" {
                     break 'found;
                 }

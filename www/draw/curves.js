@@ -219,8 +219,8 @@ export function paintAxes(pen, plot, { across, up, words }, around) {
   pen.globalAlpha = 1;
   pen.textBaseline = "middle";
   pen.textAlign = "center";
-  for (const [x, text] of across) pen.fillText(text, x, bottom + 12);
-  pen.fillText(words.x, (left + right) / 2, bottom + 31, right - left + 40);
+  for (const [x, text] of across) if (text !== "") pen.fillText(text, x, bottom + 12);
+  if (words.x !== "") pen.fillText(words.x, (left + right) / 2, bottom + 31, right - left + 40);
   pen.textAlign = "right";
   for (const [y, text] of rising) pen.fillText(String(text), left - 7, Number(y));
   // Read from left to right like everything else, above the axis.
@@ -276,7 +276,7 @@ function strokeSeries(pen, at, width, around) {
 }
 
 /** @param {CanvasRenderingContext2D} pen @param {string} colour @param {number} at gives the dash @param {number} width @param {number} alpha */
-function strokeLine(pen, colour, at, width, alpha) {
+export function strokeLine(pen, colour, at, width, alpha) {
   pen.strokeStyle = colour;
   pen.lineWidth = width;
   pen.globalAlpha = alpha;
@@ -380,7 +380,7 @@ function fitting(pen, name, room) {
 }
 
 /** @param {number} low @param {number} high */
-function roundTicks(low, high) {
+export function roundTicks(low, high) {
   const raw = (high - low) / 4;
   const unit = 10 ** Math.floor(Math.log10(raw));
   const step = unit * ([1, 2, 5, 10].find((one) => one * unit >= raw) ?? 10);

@@ -1,10 +1,11 @@
 /** Many dipoles in one head, and what their colours mean. */
 
 import { shrinkOf } from "./canvas.js";
-import { levelText } from "./curves.js";
+import { levelText, strokeLine } from "./curves.js";
 import { layOutHead, LEAST_WIDTH, paintCircles, paintPeg, paintShells, seenFrom } from "./head.js";
 import { letterFont, writeHaloed } from "./marks.js";
-import { rvColour, RV_MOST, seriesColour } from "./series.js";
+import { outlineOf, strokeOutline } from "./region.js";
+import { rvColour, RV_MOST, seriesColour, seriesDash } from "./series.js";
 
 /** @import { Surroundings } from "./canvas.js" */
 /** @import { Side, Standpoint } from "./head.js" */
@@ -18,7 +19,8 @@ const LEGEND_STEPS = 50;
 
 /**
  * Position in scalp radii; a line to both ends where the sign is arbitrary, otherwise towards the positive pole alone.
- * @typedef {{ position: number[], direction: number[], axis: boolean, rv: number, at: number, faint: boolean }} ManyDipole
+ * `bold`: a mean, or one position for many maps, over all others and with a text of its own.
+ * @typedef {{ position: number[], direction: number[], axis: boolean, rv: number, at: number, faint: boolean, bold?: string }} ManyDipole
  */
 
 /**
@@ -30,6 +32,8 @@ const LEGEND_STEPS = 50;
  * @property {Standpoint} from
  * @property {{ side: Side, text: string }[]} letters
  * @property {string} seen
+ * @property {boolean} [joined] one after the other, as they were over time
+ * @property {{ ellipsoid: Ellipsoid, at: number }[]} [spreads]
  */
 
 /** @param {ManyDipole} dipole @param {boolean} byRv @param {Surroundings} around */
@@ -64,7 +68,19 @@ export function paintDipoles(pen, width, height, content, around) {
   }
   const order = dipoles.map((dipole, at) => ({ dipole, at, depth: seen(dipole.position).z }));
   // The nearer lies over the farther, what counts over what is faint, and the chosen one over all.
-  order.sort((a, b) => Number(a.at === chosen) - Number(b.at === chosen) || Number(b.dipole.faint) - Number(a.dipole.faint) || a.depth - b.depth);
+  const bold = (/** @type {{ dipole: ManyDipole }} */ { dipole }) => Number(dipole.bold !== undefined);
+  order.sort((a, b) => bold(a) - bold(b) || Number(a.at === chosen) - Number(b.at === chosen) || Number(b.dipole.faint) - Number(a.dipole.faint) || a.depth - b.depth);
+  if (content.joined) {
+    pen.beginPath();
+    for (const { position } of dipoles.filter(({ faint, bold: own }) => !faint && own === undefined)) {
+      const { x, y } = place(position);
+      pen.lineTo(x, y);
+    }
+    strokeLine(pen, around.ink, 0, 1, 0.5);
+  }
+  for (const { ellipsoid, at } of content.spreads ?? []) {
+    strokeOutline(pen, outlineOf(ellipsoid, place), seriesColour(at, around.theme), seriesDash(at), around);
+  }
   pen.lineCap = "round";
   for (const { dipole, at } of order) {
     const foot = place(dipole.position);
@@ -72,7 +88,7 @@ export function paintDipoles(pen, width, height, content, around) {
     const [dx, dy] = [end.x - foot.x, end.y - foot.y];
     const colour = dipoleColour(dipole, byRv, around);
     const layers = /** @type {[string, number, number][]} */ (
-      at === chosen
+      at === chosen || dipole.bold !== undefined
         ? [[around.ink, 7.5, DOT + 4], [around.paper, 5, DOT + 2.5], [colour, 2.5, DOT + 1]]
         : dipole.faint
           ? [[colour, 2, DOT]]
@@ -91,6 +107,7 @@ export function paintDipoles(pen, width, height, content, around) {
       pen.arc(foot.x, foot.y, spot, 0, 2 * Math.PI);
       pen.fill();
     }
+    if (dipole.bold) writeHaloed(pen, dipole.bold, foot.x + 12, foot.y - 10, width, around);
   }
   pen.globalAlpha = 1;
   pen.lineCap = "butt";

@@ -43,7 +43,7 @@ export function outlineOf({ centre, covariance: [xx, xy, xz, yy, yz, zz], scale 
 }
 
 /** @param {CanvasRenderingContext2D} pen @param {{ x: number, y: number }[]} corners @param {string} colour @param {number[]} dash @param {Surroundings} around */
-function strokeOutline(pen, corners, colour, dash, around) {
+export function strokeOutline(pen, corners, colour, dash, around) {
   for (const [ink, width, dashes] of /** @type {[string, number, number[]][]} */ ([[around.paper, 3.5, []], [colour, 1.75, dash]])) {
     pen.beginPath();
     for (const { x, y } of corners) pen.lineTo(x, y);

@@ -188,7 +188,7 @@ export function makeEngine(compiled, keeps = true) {
       unshared: (first, last, milliseconds) => use((opened) => opened.unshared(first, last, milliseconds)),
       suspects: (unshared) => use((opened) => opened.suspects(unshared)),
       sheet: (index) => use((opened) => opened.sheet(index)),
-      response: () => use((opened) => opened.response()),
+      response: (fits) => use((opened) => opened.response(fits)),
       fixed: (first, last) => use((opened) => opened.fixed(first, last)),
     };
   }

@@ -311,6 +311,14 @@ async function answerTask(message) {
       });
       return self.postMessage({ id, value: study.suspects(all) });
     }
+    case "response":
+      return self.postMessage({ id, value: studyOf(message.key).response(message.fits) });
+    case "fixed":
+      return self.postMessage({ id, value: studyOf(message.key).fixed(message.first, message.last) });
+    case "groups":
+      return self.postMessage({ id, value: workerEngine.groups(message.request) });
+    case "mean-raster":
+      return self.postMessage({ id, value: workerEngine.meanRaster(message.rasters, message.size) });
     case "close":
       closeStudy(message.key);
       return self.postMessage({ id, value: null });

@@ -4,6 +4,7 @@
  */
 
 import { makeExplanations, UNEXPLAINED } from "./explanations.js";
+import { makeCourses } from "./courses.js";
 import { makeFitting } from "./fitting.js";
 import { makeInquiries } from "./inquiries.js";
 import { makePopulations } from "./populations.js";
@@ -379,6 +380,7 @@ export function makeSession() {
     ...sideBySide,
     ...populations,
     ...explanations,
+    ...makeCourses(store, () => client),
     read: store.read,
     watch: store.watch,
     fail,

@@ -13,7 +13,7 @@ export function typeset(text) {
     .replace(/(^|[\s(]|\de)-(?=\d)/g, `$1${MINUS}`)
     .replace(/(?<=\p{Ll})'(?=s\b)|(?<=s)'(?=\s)/gu, "\u2019")
     .replace(/(\d) : (?=\d)/g, `$1${NO_BREAK}:${NO_BREAK}`)
-    .replace(/(\d) (?=%|mm\b|cm\b|S\/m|nAm|µV|V\b)/g, `$1${NO_BREAK}`);
+    .replace(/(\d) (?=%|m?s\b|mm\b|cm\b|S\/m|nAm|µV|V\b)/g, `$1${NO_BREAK}`);
 }
 
 /** A fraction as a percentage, with the digits that the engine gives it. @param {number} fraction */

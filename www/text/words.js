@@ -1,11 +1,13 @@
 /** Every sentence of the page, by code. */
 
 import { enteredText, leftText, NO_BREAK, percentText, shortName, timeText, typeset } from "./figures.js";
+import { COURSE_WORDS } from "./courses.js";
 import { beginning, TRUST_WORDS } from "./trust.js";
 
 /** @type {Record<string, string>} */
 const WORDS = {
   ...TRUST_WORDS,
+  ...COURSE_WORDS,
   title: "Inward",
   tagline: "One equivalent dipole for one EEG scalp map",
   private: "Nothing leaves this machine",
@@ -345,6 +347,9 @@ export function word(code) {
   if (text === undefined) throw new TypeError(`no text for ${code}`);
   return text;
 }
+
+/** What stands around a map. */
+export const mapWords = () => ({ front: word("map.front"), left: word("map.left"), right: word("map.right"), above: word("map.above") });
 
 /** @param {Progress} progress */
 export function progressText({ done, total, left, about }) {

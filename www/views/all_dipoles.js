@@ -1,22 +1,16 @@
 /** Every fitted dipole of a decomposition, or of all, in one head: coloured by residual variance or by decomposition. */
 
-import { openCanvas, surroundingsOf } from "../draw/canvas.js";
-import { dipoleOnHead, paintDipoleLegend, paintDipoles } from "../draw/dipoles.js";
-import { LEAST_WIDTH } from "../draw/head.js";
+import { paintDipoleLegend } from "../draw/dipoles.js";
 import { dipoleCountText, dipoleText, shareAtText, word } from "../text/words.js";
 import { shortName } from "../text/figures.js";
 import { need } from "./element.js";
 import { figureTools, showFigure } from "./figure.js";
-import { HEAD_VIEWS } from "./head_views.js";
 import { fittedDecompositions, seriesOf, inOne } from "./several.js";
 import { keepPainted } from "./surface.js";
+import { SAVED_VIEW, threeViews } from "./three_views.js";
 
 /** @import { Session } from "../session/session.js" */
-/** @import { ManyDipole, DipolesContent } from "../draw/dipoles.js" */
-
-const DIPOLE_REACH = { mouse: 12, touch: 22 };
-/** CSS pixels of a view and of the legend in a saved figure. */
-const SAVED_VIEW = 250;
+/** @import { ManyDipole } from "../draw/dipoles.js" */
 
 /** @typedef {ManyDipole & { id: number, index: number, name: string, row: MapRow }} ListedDipole */
 
@@ -30,12 +24,6 @@ export function showAllDipoles(session) {
   const legend = need("dipole-legend", HTMLElement);
   const said = need("dipole-said", HTMLElement);
   const open = need("dipole-open", HTMLButtonElement);
-  const canvases = HEAD_VIEWS.map(({ view, from, sides }) => ({
-    canvas: need(`dipoles-${view}-view`, HTMLCanvasElement),
-    from,
-    letters: sides.map((side) => ({ side, text: word(`map.${side}`) })),
-    seen: word(`view.${view}`),
-  }));
   /** @type {ListedDipole[]} */
   let dipoles = [];
   /** @type {{ id: number, index: number } | null} */
@@ -72,16 +60,12 @@ export function showAllDipoles(session) {
     return (head?.shells ?? []).map(({ outer_radius_mm: radius }) => ({ radius: radius / (head?.radius_mm ?? 1) }));
   }
 
-  /** @param {Omit<(typeof canvases)[number], "canvas">} view @param {boolean} marked @returns {DipolesContent} */
-  const content = ({ from, letters, seen }, marked) => ({
-    dipoles,
-    chosen: marked ? chosenAt() : -1,
-    byRv,
-    shells: shells(),
-    from,
-    letters,
-    seen,
-  });
+  const three = threeViews(
+    views,
+    word("dipoles"),
+    (marked) => ({ dipoles, chosen: marked ? chosenAt() : -1, byRv, shells: shells() }),
+    (at) => choose(at, true),
+  );
   function legendContent() {
     const series = seriesOf(session.read());
     const names = new Map(shown().map(({ decomposition: { id, name } }) => [series.get(id) ?? 0, shortName(name)]));
@@ -94,11 +78,7 @@ export function showAllDipoles(session) {
   }
 
   const paint = keepPainted(section, (printing) => {
-    for (const view of canvases) {
-      const around = surroundingsOf(view.canvas, printing);
-      const opened = openCanvas(view.canvas, around, LEAST_WIDTH);
-      if (opened !== null) paintDipoles(opened.pen, opened.width, opened.height, content(view, !printing), around);
-    }
+    three.paint(printing);
     showFigure(legend, word("dipoles.legend"), printing, (width, around, penAt) =>
       paintDipoleLegend(penAt(0, 0), width, legendContent(), around),
     );
@@ -144,22 +124,6 @@ export function showAllDipoles(session) {
     else return;
     event.preventDefault();
   });
-  for (const { canvas, from } of canvases) {
-    /** @param {PointerEvent} event */
-    const under = (event) => {
-      const box = canvas.getBoundingClientRect();
-      const reach = event.pointerType === "touch" ? DIPOLE_REACH.touch : DIPOLE_REACH.mouse;
-      return dipoleOnHead(canvas, { dipoles, from }, event.clientX - box.left, event.clientY - box.top, reach);
-    };
-    canvas.addEventListener("pointermove", (event) => {
-      canvas.style.cursor = under(event) < 0 ? "" : "pointer";
-    });
-    canvas.addEventListener("click", (event) => {
-      if (!(event instanceof MouseEvent)) return;
-      const at = under(/** @type {PointerEvent} */ (event));
-      if (at >= 0) choose(at, true);
-    });
-  }
   open.addEventListener("click", async () => {
     const at = chosenAt();
     if (at < 0) return;
@@ -184,7 +148,6 @@ export function showAllDipoles(session) {
       dipoleCountText(dipoles.length, listed, above.value === "shown" ? "" : shareAtText(session.read().threshold), above.value),
       radii.size > 1 ? word("dipoles.radii") : "",
     ].filter((text) => text).join(" ");
-    for (const { canvas, seen } of canvases) canvas.setAttribute("aria-label", `${word("dipoles")}, ${seen}`);
     tell();
     paint();
   }
@@ -197,9 +160,7 @@ export function showAllDipoles(session) {
     description: need("dipoles-count", HTMLElement).textContent ?? "",
     width: 3 * SAVED_VIEW,
     paint: (width, around, penAt) => {
-      canvases.forEach((view, k) => {
-        paintDipoles(penAt(k * SAVED_VIEW, 0), SAVED_VIEW, SAVED_VIEW, content(view, false), around);
-      });
+      three.save(around, penAt);
       return SAVED_VIEW + 12 + paintDipoleLegend(penAt(0, SAVED_VIEW + 12), width, legendContent(), around);
     },
   }));

@@ -8,7 +8,7 @@ import { surroundingsOf } from "../draw/canvas.js";
 import { electrodeOnDisc, paintDisc } from "../draw/disc.js";
 import { explainedOf } from "../session/explanations.js";
 import { stretchText, typeset } from "../text/figures.js";
-import { electrodeText, scaleText, symbolOf, usedText, word } from "../text/words.js";
+import { electrodeText, mapWords, scaleText, symbolOf, usedText, word } from "../text/words.js";
 import { need } from "./element.js";
 import { keepPainted } from "./surface.js";
 
@@ -52,12 +52,7 @@ export function showMaps(session) {
   const copies = ROLES.map((role) => ({ role, canvas: need(`hand-${role}`, HTMLCanvasElement) }));
   const bar = need("scale-bar", HTMLCanvasElement);
   const said = need("electrode-said", HTMLElement);
-  const words = {
-    front: word("map.front"),
-    left: word("map.left"),
-    right: word("map.right"),
-    above: word("map.above"),
-  };
+  const words = mapWords();
   /** The electrode whose change the keyboard asked for, until it is answered. @type {string | null} */
   let changing = null;
 

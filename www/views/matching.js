@@ -6,7 +6,7 @@ import { paintMapDisc } from "../draw/disc.js";
 import { copyText } from "../export/out.js";
 import { cellsText } from "../export/table.js";
 import { percentText, shortName, typeset } from "../text/figures.js";
-import { matchedText, unmatchedText, word } from "../text/words.js";
+import { mapWords, matchedText, unmatchedText, word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { make, need } from "./element.js";
 import { fittedDecompositions, inOne } from "./several.js";
@@ -120,7 +120,7 @@ export function showMatching(session) {
       cell.append(figure);
       const maps = await session.thumbnails(decomposition.id, [index], PAIR_RASTER);
       if (maps === null) continue;
-      const words = { front: word("map.front"), left: word("map.left"), right: word("map.right"), above: word("map.above") };
+      const words = mapWords();
       const paint = () => paintMapDisc(canvas, { ...maps, raster: maps.measured[0], sign, words }, surroundingsOf(canvas, false));
       new ResizeObserver(paint).observe(canvas);
       matchMedia("(prefers-color-scheme: dark)").addEventListener("change", paint);

@@ -11,7 +11,7 @@ mod wire;
 
 use clock::Clock;
 use inward_core::fit::BATCH;
-use inward_core::{MapReport, Request, Settings, Study as Inner};
+use inward_core::{MapReport, Request, Settings, Study as Inner, Vec3};
 use js_sys::{Array, Object};
 use wasm_bindgen::prelude::*;
 use wire::{Inputs, misunderstood, plain, set, thrown};
@@ -221,9 +221,14 @@ impl Study {
         plain(&self.0.assess(index, &what).map_err(|error| thrown(&error))?)
     }
 
-    /// The response over time; `null` unless the maps are time points.
-    pub fn response(&self) -> Result<JsValue, JsValue> {
-        plain(&self.0.response())
+    /// The response over time; `null` unless the maps are time points. What was fitted before may be given, five numbers for
+    /// each map: position in scalp radii, strength, residual variance; NaN for one without a fit.
+    pub fn response(&self, fits: Option<Vec<f64>>) -> Result<JsValue, JsValue> {
+        let one = |fit: &[f64; 5]| fit[4].is_finite().then(|| (Vec3::new(fit[0], fit[1], fit[2]), fit[3], fit[4]));
+        plain(&match fits {
+            None => self.0.response(),
+            Some(fits) => self.0.response_of(|| fits.as_chunks::<5>().0.iter().map(one).collect()),
+        })
     }
 
     /// One position for the time points from `first` to `last`, both included; `null` unless the maps are time points.

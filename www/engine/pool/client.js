@@ -239,9 +239,9 @@ export function makeClient(module, startWorker, book = makeBook()) {
       requests.delete(key);
     },
 
-    /** Gives up everything asked about one study; the rest is asked again. @param {number} key */
-    giveUp(key) {
-      const given = [...waiting].filter(([, one]) => keysOf(one.task).includes(key));
+    /** Gives up everything asked about one study, or of one kind; the rest is asked again. @param {number | WorkerTask["kind"]} what */
+    giveUp(what) {
+      const given = [...waiting].filter(([, { task }]) => (typeof what === "string" ? task.kind === what : keysOf(task).includes(what)));
       if (given.length === 0) return;
       for (const [id] of given) waiting.delete(id);
       restart();

@@ -88,10 +88,10 @@ export function makePool(module, startWorker, helpers = helperCount()) {
       if (!schedule.has(key)) for (const client of others) client.release(key);
     },
 
-    /** Gives up everything asked about one study; the rest is asked again. @param {number} key */
-    giveUp(key) {
-      schedule.drop(key);
-      for (const client of clients) client.giveUp(key);
+    /** Gives up everything asked about one study, or of one kind; the rest is asked again. @param {number | WorkerTask["kind"]} what */
+    giveUp(what) {
+      if (typeof what === "number") schedule.drop(what);
+      for (const client of clients) client.giveUp(what);
     },
 
     /**

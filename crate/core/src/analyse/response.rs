@@ -4,13 +4,25 @@ use super::Study;
 use crate::finding::Error;
 use crate::fit::Fit;
 use crate::map::average_referenced;
-use crate::math::{Symmetric3, dot};
+use crate::math::{Symmetric3, Vec3, dot};
 use crate::report::{Fixed, FixedFit, Measured, Response};
 use crate::understand::ColumnsAre;
 
 impl Study {
     /// The response over time; `None` unless the maps are time points.
     pub fn response(&self) -> Option<Response> {
+        let unit = self.settings.map_unit;
+        self.response_of(|| {
+            self.batches(0..self.count(), |index, _, fit| {
+                let fit = fit?;
+                let size = unit.microvolts() * self.settings.activation_sd(index).unwrap_or(1.0);
+                Some((fit.position, fit.moment.norm() * size, fit.residual_variance))
+            })
+        })
+    }
+
+    /// The same of fits made before: position, strength as it is reported, and residual variance of each map that has them.
+    pub fn response_of(&self, fits: impl FnOnce() -> Vec<Option<(Vec3, f64, f64)>>) -> Option<Response> {
         let understood = &self.tables.understood;
         if understood.columns_are != ColumnsAre::TimePoints {
             return None;
@@ -38,12 +50,8 @@ impl Study {
         // The mean of the window was subtracted from each channel, that of the electrodes from each map.
         let freedom = inside.saturating_sub(1) * (electrodes - 1);
         let noise_sd = (freedom > 0).then(|| (squares / freedom as f64).sqrt());
-        let unit = self.settings.map_unit;
-        let fits = self.batches(0..count, |index, _, fit| {
-            let fit = fit?;
-            let size = unit.microvolts() * self.settings.activation_sd(index).unwrap_or(1.0);
-            Some((fit.position, fit.moment.norm() * size, fit.residual_variance))
-        });
+        let (mut fits, unit) = (fits(), self.settings.map_unit);
+        fits.resize(count, None);
         Some(Response::new(Measured { times, gfp, fits, baseline, noise_sd, unit }))
     }
 

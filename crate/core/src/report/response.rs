@@ -147,11 +147,11 @@ impl Response {
         }
         let sentence = match (instants.as_slice(), &floor) {
             ([onset, middle, peak], Some(floor)) => format!(
-                "Global field power is largest at {} ({}). It rises above {} at {} and is half way up at {}.",
+                "Global field power is largest at {} ({}). At {} it rises above {}; at {} it is half way up.",
                 at(peak.index),
                 power(gfp[peak.index]),
-                floor.sentence,
                 at(onset.index),
+                floor.sentence,
                 at(middle.index)
             ),
             ([peak], Some(floor)) => format!(

@@ -1,0 +1,142 @@
+//! Time points of one response and dipoles of several people on the page: what is told is what the engine finds natively.
+use inward_core::{Request, Study, Vec3};
+use inward_tests::{Browser, Draw, DroppedFile, Electrodes, Page, PlainSeries, Surroundings, in_both_browsers};
+use serde_json::json;
+
+/// A response as a table in µV, every 20 ms from −100: a source that rises from 40 ms on and moves, in noise.
+fn response_table() -> String {
+    let electrodes = Electrodes::set(32);
+    let series = PlainSeries::standard();
+    let mut draw = Draw::from(5);
+    let times: Vec<f64> = (0..21).map(|k| -100.0 + 20.0 * f64::from(k)).collect();
+    let maps: Vec<Vec<f64>> = times
+        .iter()
+        .map(|time| {
+            let after = (time - 120.0) / 45.0;
+            let moment = Vec3::new(0.6, 0.3, 0.8) * (60.0 * if *time > 30.0 { (-after * after).exp() } else { 0.0 });
+            let place = Vec3::new(0.4 + after / 40.0, 0.1, 0.5);
+            let lead = series.lead(place, &electrodes.directions, 1e-10);
+            lead.iter().map(|row| row.dot(moment) + 0.2 * draw.normal()).collect()
+        })
+        .collect();
+    let mut text = format!("label\t{}\n", times.iter().map(|time| format!("{time} ms")).collect::<Vec<_>>().join("\t"));
+    for (row, label) in electrodes.labels.iter().enumerate() {
+        text +=
+            &format!("{label}\t{}\n", maps.iter().map(|map| format!("{:.4}", map[row])).collect::<Vec<_>>().join("\t"));
+    }
+    text
+}
+
+/// As the engine writes it: the page sets signs and blanks for the eye.
+fn plain(text: &str) -> String {
+    text.replace('\u{a0}', " ").replace('\u{2212}', "-").replace('\u{2019}', "'").trim().to_owned()
+}
+
+/// A press of a key beside Control and the tabulator, by its number in the WebDriver standard.
+fn key(code: u32) -> String {
+    char::from_u32(code).unwrap().to_string()
+}
+const RIGHT: u32 = 0xE014;
+const END: u32 = 0xE010;
+
+fn a_response_is_chosen_in_time(browser: Browser) {
+    let table = response_table();
+    let study = Study::open(&Request {
+        maps: table.as_bytes(),
+        settings: serde_json::from_value(json!({ "mapUnit": "uV" })).unwrap(),
+        ..Request::default()
+    })
+    .unwrap();
+    let native = study.response().unwrap();
+    let page = Page::open(browser);
+    page.drop_files(&[DroppedFile { name: "response.tsv", text: &table }]);
+    page.until("an answer", Page::rests);
+    page.value("document.querySelector('[name=unit][value=uV]').click()");
+    page.until("the response", |page| plain(&page.text("#response-sentence")) == native.sentence);
+    let labels: Vec<String> = page.texts("#response-instants button").iter().map(|text| plain(text)).collect();
+    assert_eq!(labels, native.instants.iter().map(|one| one.label.clone()).collect::<Vec<_>>());
+
+    // The map of an instant is shown everywhere, by button, by key and by pointer.
+    let shown = |index: usize| {
+        page.until("the map", |page| page.text("#subject").starts_with(&format!("{} ms", native.times[index])));
+        assert_eq!(page.attribute("#response-instant", "aria-valuenow"), index.to_string());
+        assert!(plain(&page.text("#response-readout")).starts_with(&format!("{} ms", native.times[index])));
+    };
+    page.click("#response-instants button:nth-child(2)");
+    let middle = native.instants[1].index;
+    shown(middle);
+    assert_eq!(page.attribute("#response-instants button:nth-child(2)", "aria-pressed"), "true");
+    page.focus("#response-instant");
+    page.press(&key(RIGHT));
+    shown(middle + 1);
+    page.press(&key(END));
+    shown(20);
+    let before = page.pixels("#response-map").bytes;
+    let width = page.value("return document.querySelector('#response-figure').clientWidth").as_f64().unwrap();
+    let peak = native.instants[2].index;
+    let across = 46.0 + (width - 60.0) * peak as f64 / 20.0;
+    page.click_at("#response-figure", (across - width / 2.0).round() as i64, 60);
+    shown(peak);
+    page.until("its map", |page| page.pixels("#response-map").bytes != before);
+    assert!(plain(&page.text("#response-quiet")).contains("of 21 time points, drawn faint"));
+
+    // One position over an interval: by fields, by keys; what cannot be is refused.
+    let fixed = |first: usize, last: usize| {
+        let native = study.fixed(first, last).unwrap().unwrap();
+        page.until("one position", |page| plain(&page.text("#fixed-sentence")) == native.sentence);
+        let told = page.text("#fixed-rows [data-code=pooled_residual_variance] .value");
+        assert!(told.starts_with(&native.rows[0].value), "{told}");
+    };
+    page.click("#fixed summary");
+    fixed(native.instants[0].index, peak);
+    page.fill("#fixed-to", "1000");
+    assert_eq!(page.attribute("#fixed-to", "aria-invalid"), "true");
+    page.fill("#fixed-to", "161");
+    fixed(native.instants[0].index, 13);
+    page.focus("#fixed-first");
+    page.press(&key(RIGHT));
+    fixed(native.instants[0].index + 1, 13);
+    assert_eq!(page.accessibility_findings(), Vec::<String>::new());
+    page.picture("response");
+    for (name, surroundings) in [
+        ("dark", Surroundings { dark: true, ..Surroundings::default() }),
+        ("narrow", Surroundings { zoom: 4, ..Surroundings::default() }),
+    ] {
+        page.surround(surroundings);
+        page.settle();
+        assert_eq!(page.accessibility_findings(), Vec::<String>::new(), "{name}");
+        assert_eq!(page.overhang(), json!(0), "{name}");
+        page.value("document.querySelector('#response-sentence').scrollIntoView()");
+        page.picture(&format!("response-{name}"));
+    }
+    page.surround(Surroundings::default());
+    let figure = page.download("#response-tools [data-figure=svg]", "inward-response.svg");
+    for part in ["global field power", "mid-rise", "one position", "seen from above"] {
+        assert!(figure.contains(part), "{part}");
+    }
+
+    // The baseline gives the noise, which is taken for the region.
+    page.click("#response-baseline");
+    page.fill("#set-baseline-from", "-100");
+    page.fill("#set-baseline-to", "0");
+    page.until("noise", |page| page.visible("#response-take"));
+    page.click("#response-take");
+    page.until("taken", |page| {
+        page.value("return document.querySelector('#set-noise-sd').value !== ''") == json!(true)
+    });
+    let taken = || page.value("return document.querySelector('#response-take').disabled");
+    assert_eq!(taken(), json!(true));
+}
+
+/// Components are no response.
+#[test]
+fn components_have_no_time_points() {
+    let page = Page::open(Browser::Chromium);
+    page.drop_files(&[DroppedFile { name: "response.tsv", text: &response_table() }]);
+    page.until("an answer", Page::rests);
+    page.until("the response", |page| page.visible("#response"));
+    page.choose("#set-columnsAre", "components of one decomposition");
+    page.until("none", |page| !page.visible("#response"));
+}
+
+in_both_browsers!(a_response_is_chosen_in_time);

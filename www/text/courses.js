@@ -1,0 +1,53 @@
+/** Words of a response over time, and of the dipoles of several people. */
+
+import { enteredText, percentText, shortName, timeText, typeset } from "./figures.js";
+
+/** @type {Record<string, string>} */
+export const COURSE_WORDS = {
+  response: "Time points of one response",
+  "response.instant": "Time point",
+  "response.use": "Click or drag in the curves, or go with the arrow keys (with Page Up and Page Down by ten): the map of that time point is shown everywhere.",
+  "response.gfp": "global field power",
+  "response.floor": "noise floor",
+  "response.rv": "residual variance (RV) in %",
+  "response.place": "position in mm",
+  "response.x": "x right",
+  "response.y": "y front",
+  "response.z": "z up",
+  "response.strength": "strength",
+  "response.moving": "moving dipole",
+  "response.fixed": "one position",
+  "response.views": "Positions of the moving dipole",
+  "response.quiet": "at or below the noise floor: residual variance and position mean nothing there",
+  "response.baseline": "Set the baseline window",
+  "response.noise": "Take it as the noise of the region",
+  "response.taken": "Taken as the noise of the region",
+  fixed: "One position over an interval",
+  "fixed.from": "from",
+  "fixed.to": "to",
+  "fixed.first": "Begin of the interval",
+  "fixed.last": "End of the interval",
+  "fixed.busy": "Fitting one position",
+  "fixed.invalid": "Two times of the response, please, with a point for decimals.",
+  "fixed.stopped": "Stopped. Change the interval, or open it again, to fit.",
+};
+
+/** A time point in a line. @param {TimeCourse} course @param {number} index @param {number} radius @param {boolean} quiet */
+export function instantText({ times, unit, gfp, gfp_unit, rv, positions }, index, radius, quiet) {
+  const parts = [timeText(times[index], unit)];
+  const power = gfp[index];
+  if (power !== null) parts.push(`global field power ${enteredText(Number(power.toPrecision(3)))} ${gfp_unit}`);
+  const share = rv[index];
+  if (share !== null) parts.push(`RV ${percentText(share)}`);
+  const place = positions[index];
+  if (place !== null) parts.push(`x, y, z ${place.map((part) => (radius * part).toFixed(0)).join(", ")} mm`);
+  if (quiet) parts.push(COURSE_WORDS["response.quiet"]);
+  return typeset(parts.join(" · "));
+}
+
+/** @param {number} count of quiet time points @param {number} all @param {number} missing without a fit */
+export function quietText(count, all, missing) {
+  const parts = count === 0 ? [] : [`${count} of ${all} time points, drawn faint, lie ${COURSE_WORDS["response.quiet"]}.`];
+  if (missing > 0) parts.push(`${missing} of ${all} are not fitted.`);
+  return parts.join(" ");
+}

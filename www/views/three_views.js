@@ -1,0 +1,63 @@
+/** Many dipoles seen from above, behind and the left, on canvases of one panel; one that is clicked on is told. */
+
+import { openCanvas, surroundingsOf } from "../draw/canvas.js";
+import { dipoleOnHead, paintDipoles } from "../draw/dipoles.js";
+import { LEAST_WIDTH } from "../draw/head.js";
+import { word } from "../text/words.js";
+import { make } from "./element.js";
+import { HEAD_VIEWS } from "./head_views.js";
+
+/** @import { Surroundings } from "../draw/canvas.js" */
+/** @import { DipolesContent } from "../draw/dipoles.js" */
+
+/** CSS pixels of a view in a saved figure. */
+export const SAVED_VIEW = 250;
+const DIPOLE_REACH = { mouse: 12, touch: 22 };
+
+/** @typedef {Omit<DipolesContent, "from" | "letters" | "seen">} SeenDipoles */
+
+/**
+ * @param {HTMLElement} place
+ * @param {string} title
+ * @param {(marked: boolean) => SeenDipoles} content what is drawn, with the chosen one marked or not
+ * @param {(at: number) => void} choose
+ */
+export function threeViews(place, title, content, choose) {
+  const views = HEAD_VIEWS.map(({ view, from, sides }) => {
+    const seen = word(`view.${view}`);
+    const canvas = /** @type {HTMLCanvasElement} */ (make("canvas", "", { id: `${place.id}-${view}`, class: "disc", role: "img", "aria-label": `${title}, ${seen}` }));
+    const letters = sides.map((side) => ({ side, text: word(`map.${side}`) }));
+    /** @param {PointerEvent} event */
+    const under = (event) => {
+      const box = canvas.getBoundingClientRect();
+      const reach = event.pointerType === "touch" ? DIPOLE_REACH.touch : DIPOLE_REACH.mouse;
+      return dipoleOnHead(canvas, { ...content(false), from }, event.clientX - box.left, event.clientY - box.top, reach);
+    };
+    canvas.addEventListener("pointermove", (event) => {
+      canvas.style.cursor = under(event) < 0 ? "" : "pointer";
+    });
+    canvas.addEventListener("click", (event) => {
+      const at = under(/** @type {PointerEvent} */ (event));
+      if (at >= 0) choose(at);
+    });
+    return { canvas, view: { from, letters, seen } };
+  });
+  place.replaceChildren(...views.map(({ canvas }) => canvas));
+  return {
+    /** @param {boolean} printing */
+    paint(printing) {
+      for (const { canvas, view } of views) {
+        const around = surroundingsOf(canvas, printing);
+        const opened = openCanvas(canvas, around, LEAST_WIDTH);
+        if (opened !== null) paintDipoles(opened.pen, opened.width, opened.height, { ...content(!printing), ...view }, around);
+      }
+    },
+    /** All three side by side, as they are saved. @param {Surroundings} around @param {(x: number, y: number) => CanvasRenderingContext2D} penAt @param {number} [top] */
+    save(around, penAt, top = 0) {
+      views.forEach(({ view }, k) => {
+        paintDipoles(penAt(k * SAVED_VIEW, top), SAVED_VIEW, SAVED_VIEW, { ...content(false), ...view }, around);
+      });
+      return top + SAVED_VIEW;
+    },
+  };
+}
