@@ -14,6 +14,7 @@ import { showElectrodes } from "./views/electrodes.js";
 import { furnish, need } from "./views/element.js";
 import { showExamples } from "./views/examples.js";
 import { showFailure } from "./views/failure.js";
+import { showGroups } from "./views/groups.js";
 import { showHead } from "./views/head.js";
 import { showHeadViews } from "./views/head_views.js";
 import { showInfluence } from "./views/influence.js";
@@ -80,6 +81,7 @@ for (const show of [
   showResponse,
   showShares,
   showAllDipoles,
+  showGroups,
   showMatching,
   showUnderstood,
   showNotes,

@@ -1,7 +1,8 @@
 //! Time points of one response and dipoles of several people on the page: what is told is what the engine finds natively.
+use inward_core::report::Groups;
 use inward_core::{Request, Study, Vec3};
 use inward_tests::{Browser, Draw, DroppedFile, Electrodes, Page, PlainSeries, Surroundings, in_both_browsers};
-use serde_json::json;
+use serde_json::{Value, json};
 
 /// A response as a table in µV, every 20 ms from −100: a source that rises from 40 ms on and moves, in noise.
 fn response_table() -> String {
@@ -128,6 +129,128 @@ fn a_response_is_chosen_in_time(browser: Browser) {
     assert_eq!(taken(), json!(true));
 }
 
+/// Maps of three places in four people, each a little elsewhere, and of noise; with standard positions.
+fn recordings() -> Vec<(String, String)> {
+    let electrodes = Electrodes::set(32);
+    let series = PlainSeries::standard();
+    let mut draw = Draw::from(9);
+    let places = [Vec3::new(0.45, 0.2, 0.4), Vec3::new(-0.45, 0.1, 0.4), Vec3::new(0.0, -0.5, 0.4)];
+    (1..=4)
+        .map(|person| {
+            let mut maps: Vec<Vec<f64>> = places
+                .iter()
+                .map(|place| {
+                    let near = Vec3::new(draw.normal(), draw.normal(), draw.normal()) * 0.04;
+                    let sign = if draw.normal() < 0.0 { -1.0 } else { 1.0 };
+                    let lead = series.lead(*place + near, &electrodes.directions, 1e-10);
+                    lead.iter().map(|row| sign * row.dot(Vec3::new(0.3, 0.2, 0.9)) + 0.001 * draw.normal()).collect()
+                })
+                .collect();
+            maps.push((0..32).map(|_| draw.normal()).collect());
+            let mut text = "label\ta\tb\tc\tnoise\n".to_owned();
+            for (row, label) in electrodes.labels.iter().enumerate() {
+                text += &format!(
+                    "{label}\t{}\n",
+                    maps.iter().map(|map| format!("{:.5}", map[row])).collect::<Vec<_>>().join("\t")
+                );
+            }
+            (format!("sub-{person:02}_maps.tsv"), text)
+        })
+        .collect()
+}
+
+/// The same natively, of maps with a residual variance of at most 10 %.
+fn grouped(recordings: &[(String, String)], groups: Option<usize>) -> Groups {
+    let members: Vec<Value> = recordings
+        .iter()
+        .map(|(name, text)| {
+            let study = Study::open(&Request { maps: text.as_bytes(), ..Request::default() }).unwrap();
+            let radius = study.head().radius_mm;
+            let dipoles: Vec<Value> = (0..study.count())
+                .filter_map(|map| {
+                    let fit = serde_json::to_value(study.fit(map).unwrap()).unwrap();
+                    let rv = fit["residual_variance"].as_f64().unwrap();
+                    let mm = fit["dipole"]["canonical_mm"].as_array().unwrap();
+                    let position: Vec<f64> = mm.iter().map(|part| part.as_f64().unwrap() / radius).collect();
+                    let direction = &fit["dipole"]["canonical_direction"];
+                    (rv <= 0.1).then(|| json!({ "map": map, "position": position, "direction": direction, "rv": rv }))
+                })
+                .collect();
+            json!({ "name": name, "subject": name[4..6], "dipoles": dipoles })
+        })
+        .collect();
+    Groups::new(&serde_json::from_value(json!({ "members": members, "groups": groups })).unwrap()).unwrap()
+}
+
+fn dipoles_of_several_people_are_grouped(browser: Browser) {
+    let recordings = recordings();
+    let native = grouped(&recordings, None);
+    assert_eq!((native.count, native.groups[0].subjects), (3, 4));
+    let page = Page::open(browser);
+    let files: Vec<DroppedFile> = recordings.iter().map(|(name, text)| DroppedFile { name, text }).collect();
+    page.drop_files(&files);
+    page.until("all recordings", |page| page.rests() && page.texts(".decomposition").len() == 4);
+    page.click("#groups > summary");
+    let told = |native: &Groups| {
+        page.until("groups", |page| plain(&page.text("#groups-sentence")) == native.sentence);
+        let cells: Vec<String> = page.texts("#groups-table td").iter().map(|cell| plain(cell)).collect();
+        assert_eq!(cells, native.groups.iter().flat_map(|group| group.cells.clone()).collect::<Vec<_>>());
+    };
+    told(&native);
+    assert_eq!(page.texts("#groups-people tbody td:last-child"), ["3"; 4]);
+    assert!(page.text("#groups-notes").contains("a centimetre or more"));
+    let values: Vec<String> = native.criterion.iter().map(|one| one.text.clone()).collect();
+    assert_eq!(page.texts("#groups-criterion td").iter().map(|text| plain(text)).collect::<Vec<_>>(), values);
+    page.until("mean maps", |page| page.texts("#groups-maps canvas").len() == 3 && !page.visible("#groups-progress"));
+    assert_eq!(page.accessibility_findings(), Vec::<String>::new());
+    page.picture("groups");
+
+    // Chosen by hand; another person; one left out; all maps.
+    page.choose("#groups-count", &format!("2 (silhouette {})", native.criterion[0].text));
+    told(&grouped(&recordings, Some(2)));
+    page.choose("#groups-count", "automatic");
+    told(&native);
+    page.fill("#groups-people tbody tr:last-child [type=text]", "01");
+    page.until("three people", |page| page.text("#groups-sentence").contains("of 3 people"));
+    page.click("#groups-people tbody tr:last-child [type=checkbox]");
+    told(&grouped(&recordings[..3], None));
+
+    // Names leave only where they are asked for.
+    let copied = || {
+        page.click("#copy-groups");
+        page.until("a copy", |page| page.text("#copy-groups") == "Copied");
+        page.clipboard()
+    };
+    let without = copied();
+    assert!(!without.contains("\t01\t") && !without.contains("maps") && without.contains("\ta\t"), "{without}");
+    page.until("again", |page| page.text("#copy-groups") != "Copied");
+    page.click("#groups-names");
+    assert!(copied().contains("1\t01\t"));
+    let figure = page.download("#groups-tools [data-figure=svg]", "inward-groups.svg");
+    assert!(figure.contains("Group 3") && figure.contains("seen from the left"));
+
+    // A member opens its map.
+    page.click("#groups-members details:nth-child(2) summary");
+    let member = page.text("#groups-members details:nth-child(2) button:nth-of-type(3)");
+    page.click("#groups-members details:nth-child(2) button:nth-of-type(3)");
+    page.until("its map", |page| {
+        page.text("#subject").starts_with(member.split(" · ").next().unwrap())
+            && page.text("#subject").contains("sub-03")
+    });
+    for (name, surroundings) in [
+        ("dark", Surroundings { dark: true, ..Surroundings::default() }),
+        ("narrow", Surroundings { zoom: 4, ..Surroundings::default() }),
+    ] {
+        page.surround(surroundings);
+        page.settle();
+        assert_eq!(page.accessibility_findings(), Vec::<String>::new(), "{name}");
+        assert_eq!(page.overhang(), json!(0), "{name}");
+        page.value("document.querySelector('#groups-sentence').scrollIntoView()");
+        page.picture(&format!("groups-{name}"));
+    }
+    page.surround(Surroundings::default());
+}
+
 /// Components are no response.
 #[test]
 fn components_have_no_time_points() {
@@ -139,4 +262,4 @@ fn components_have_no_time_points() {
     page.until("none", |page| !page.visible("#response"));
 }
 
-in_both_browsers!(a_response_is_chosen_in_time);
+in_both_browsers!(a_response_is_chosen_in_time, dipoles_of_several_people_are_grouped);

@@ -29,6 +29,33 @@ export const COURSE_WORDS = {
   "fixed.last": "End of the interval",
   "fixed.busy": "Fitting one position",
   "fixed.invalid": "Two times of the response, please, with a point for decimals.",
+  groups: "Dipoles of several people",
+  "groups.which": "Maps that go in",
+  "groups.all": "all that are fitted",
+  "groups.count": "Groups",
+  "groups.axis": "At one place, axes at a right angle count as",
+  "groups.axis-invalid": "A distance from 0 to 200 mm, please.",
+  "groups.busy": "Grouping",
+  "groups.waiting": "Grouped as soon as all maps are fitted.",
+  "groups.stopped": "Stopped. Change something, or open this again, to group.",
+  "groups.people": "Recordings and people",
+  "groups.recording": "Recording",
+  "groups.person": "Person",
+  "groups.persons": "People",
+  "groups.own": "of its own",
+  "groups.dipoles": "Dipoles",
+  "groups.group": "Group",
+  "groups.place": "Position, mm",
+  "groups.spread": "Spread, mm",
+  "groups.turn": "Axes, °",
+  "groups.rv": "Mean RV, %",
+  "groups.map": "Map",
+  "groups.maps": "Mean maps",
+  "groups.mean": "Means of the members’ interpolated maps, each over its largest value, signs turned to agree: what the pictures have in common, no values of electrodes.",
+  "groups.none": "None of its maps can be interpolated.",
+  "groups.members": "Members",
+  "groups.criterion": "Mean silhouette by number of groups",
+  "groups.names": "with names of people and recordings",
   "fixed.stopped": "Stopped. Change the interval, or open it again, to fit.",
 };
 
@@ -50,4 +77,14 @@ export function quietText(count, all, missing) {
   const parts = count === 0 ? [] : [`${count} of ${all} time points, drawn faint, lie ${COURSE_WORDS["response.quiet"]}.`];
   if (missing > 0) parts.push(`${missing} of ${all} are not fitted.`);
   return parts.join(" ");
+}
+
+/** A number of groups to choose. @param {number} count @param {string} silhouette or empty */
+export function countOptionText(count, silhouette) {
+  return silhouette === "" ? String(count) : `${count} (silhouette ${silhouette})`;
+}
+
+/** A member of a group. @param {MapRow} row @param {Decomposition} of */
+export function memberText({ name, rv }, { name: recording, subject }) {
+  return [name, recording, subject].filter((part) => part).map(shortName).concat(`RV ${percentText(rv)}`).join(" · ");
 }

@@ -7,7 +7,7 @@ import { need } from "./element.js";
 import { figureTools, showFigure } from "./figure.js";
 import { fittedDecompositions, seriesOf, inOne } from "./several.js";
 import { keepPainted } from "./surface.js";
-import { SAVED_VIEW, threeViews } from "./three_views.js";
+import { SAVED_VIEW, shellsOf, threeViews } from "./three_views.js";
 
 /** @import { Session } from "../session/session.js" */
 /** @import { ManyDipole } from "../draw/dipoles.js" */
@@ -54,16 +54,10 @@ export function showAllDipoles(session) {
     });
   }
 
-  /** Shells of the head that is shown; those of others may differ. */
-  function shells() {
-    const head = shown()[0]?.decomposition.answer?.preamble.head;
-    return (head?.shells ?? []).map(({ outer_radius_mm: radius }) => ({ radius: radius / (head?.radius_mm ?? 1) }));
-  }
-
   const three = threeViews(
     views,
     word("dipoles"),
-    (marked) => ({ dipoles, chosen: marked ? chosenAt() : -1, byRv, shells: shells() }),
+    (marked) => ({ dipoles, chosen: marked ? chosenAt() : -1, byRv, shells: shellsOf(shown()[0]?.decomposition.answer) }),
     (at) => choose(at, true),
   );
   function legendContent() {

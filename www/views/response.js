@@ -12,7 +12,7 @@ import { writeRows } from "./rows.js";
 import { settingId } from "./setting.js";
 import { inOne } from "./several.js";
 import { keepPainted } from "./surface.js";
-import { SAVED_VIEW, threeViews } from "./three_views.js";
+import { SAVED_VIEW, shellsOf, threeViews } from "./three_views.js";
 
 /** @import { Session } from "../session/session.js" */
 /** @import { CourseContent, CoursePlot } from "../draw/course.js" */
@@ -118,13 +118,12 @@ export function showResponse(session) {
     need("response-views", HTMLElement),
     word("response.views"),
     (marked) => {
-      const { shells, radius_mm: whole } = session.read().answer?.preamble.head ?? { shells: [], radius_mm: 1 };
       const all = dipoles();
       return {
         dipoles: all,
         chosen: marked ? all.findIndex(({ index }) => index === chosen()) : -1,
         byRv: true,
-        shells: shells.map(({ outer_radius_mm: outer }) => ({ radius: outer / whole })),
+        shells: shellsOf(session.read().answer),
         joined: true,
       };
     },

@@ -16,6 +16,12 @@ const DIPOLE_REACH = { mouse: 12, touch: 22 };
 
 /** @typedef {Omit<DipolesContent, "from" | "letters" | "seen">} SeenDipoles */
 
+/** Shells in scalp radii. @param {Answer | null | undefined} answer */
+export function shellsOf(answer) {
+  const { shells, radius_mm: whole } = answer?.preamble.head ?? { shells: [], radius_mm: 1 };
+  return shells.map(({ outer_radius_mm: radius }) => ({ radius: radius / whole }));
+}
+
 /**
  * @param {HTMLElement} place
  * @param {string} title
