@@ -200,6 +200,7 @@ interface WhatIf {
     depth: string;
     rv: string;
     shift_mm: number;
+    depth_mm: number;
     rv_change: number;
     none: string | null;
   }[];

@@ -28,11 +28,11 @@ function barCell(text, share, signed) {
 /** @param {WhatIf["rows"]} rows */
 function rowElements(rows) {
   const most = Math.max(1e-9, ...rows.map(({ shift_mm }) => shift_mm));
-  return rows.map(({ change, label, shift, depth, rv, shift_mm, none }) => {
+  return rows.map(({ change, label, shift, depth, rv, shift_mm, depth_mm, none }) => {
     const row = make("tr", "", { "data-change": change });
     row.append(make("th", typeset(label), { scope: "row" }));
     if (none !== null) row.append(make("td", typeset(none), { colspan: "3", class: "small long" }));
-    else row.append(barCell(shift, shift_mm / most, false), barCell(depth, Number(depth) / most, true), make("td", typeset(rv)));
+    else row.append(barCell(shift, shift_mm / most, false), barCell(depth, depth_mm / most, true), make("td", typeset(rv)));
     return row;
   });
 }

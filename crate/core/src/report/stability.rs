@@ -248,6 +248,8 @@ pub struct WhatIfWords {
     pub rv: String,
     /// For drawings.
     pub shift_mm: f64,
+    /// The same of the depth; 0 where its sign is not told.
+    pub depth_mm: f64,
     /// Residual variance less that of the fit.
     pub rv_change: f64,
     /// Why it does not apply.
@@ -314,6 +316,7 @@ impl WhatIf {
                 depth,
                 rv: report.rv.map_or_else(String::new, percent),
                 shift_mm: report.shift_mm.unwrap_or(0.0),
+                depth_mm: report.depth_mm.filter(|_| !misplaced).unwrap_or(0.0),
                 rv_change: report.rv.map_or(0.0, |other| other - rv),
                 none: report.shift_mm.is_none().then(|| change.lacking()),
             }
