@@ -110,6 +110,10 @@ fn a_response_is_chosen_in_time(browser: Browser) {
         page.value("document.querySelector('#response-sentence').scrollIntoView()");
         page.picture(&format!("response-{name}"));
     }
+    page.surround(Surroundings { print: true, ..Surroundings::default() });
+    page.settle();
+    page.value("document.querySelector('#response-sentence').scrollIntoView()");
+    page.picture("response-print");
     page.surround(Surroundings::default());
     let figure = page.download("#response-tools [data-figure=svg]", "inward-response.svg");
     for part in ["global field power", "mid-rise", "one position", "seen from above"] {
@@ -203,6 +207,7 @@ fn dipoles_of_several_people_are_grouped(browser: Browser) {
     assert_eq!(page.texts("#groups-criterion td").iter().map(|text| plain(text)).collect::<Vec<_>>(), values);
     page.until("mean maps", |page| page.texts("#groups-maps canvas").len() == 3 && !page.visible("#groups-progress"));
     assert_eq!(page.accessibility_findings(), Vec::<String>::new());
+    page.value("document.querySelector('#groups-sentence').scrollIntoView()");
     page.picture("groups");
 
     // Chosen by hand; another person; one left out; all maps.
@@ -248,6 +253,10 @@ fn dipoles_of_several_people_are_grouped(browser: Browser) {
         page.value("document.querySelector('#groups-sentence').scrollIntoView()");
         page.picture(&format!("groups-{name}"));
     }
+    page.surround(Surroundings { print: true, ..Surroundings::default() });
+    page.settle();
+    page.value("document.querySelector('#groups-sentence').scrollIntoView()");
+    page.picture("groups-print");
     page.surround(Surroundings::default());
 }
 

@@ -4,6 +4,7 @@ import { enteredText, percentText, shortName, timeText, typeset } from "./figure
 
 /** @type {Record<string, string>} */
 export const COURSE_WORDS = {
+  "course.stopped": "Stopped. Change something, or open this again, to go on.",
   response: "Time points of one response",
   "response.instant": "Time point",
   "response.use": "Click or drag in the curves, or go with the arrow keys (with Page Up and Page Down by ten): the map of that time point is shown everywhere.",
@@ -27,7 +28,6 @@ export const COURSE_WORDS = {
   "fixed.to": "to",
   "fixed.first": "Begin of the interval",
   "fixed.last": "End of the interval",
-  "fixed.busy": "Fitting one position",
   "fixed.invalid": "Two times of the response, please, with a point for decimals.",
   groups: "Dipoles of several people",
   "groups.which": "Maps that go in",
@@ -35,9 +35,7 @@ export const COURSE_WORDS = {
   "groups.count": "Groups",
   "groups.axis": "At one place, axes at a right angle count as",
   "groups.axis-invalid": "A distance from 0 to 200 mm, please.",
-  "groups.busy": "Grouping",
   "groups.waiting": "Grouped as soon as all maps are fitted.",
-  "groups.stopped": "Stopped. Change something, or open this again, to group.",
   "groups.people": "Recordings and people",
   "groups.recording": "Recording",
   "groups.person": "Person",
@@ -56,7 +54,6 @@ export const COURSE_WORDS = {
   "groups.members": "Members",
   "groups.criterion": "Mean silhouette by number of groups",
   "groups.names": "with names of people and recordings",
-  "fixed.stopped": "Stopped. Change the interval, or open it again, to fit.",
 };
 
 /** A time point in a line. @param {TimeCourse} course @param {number} index @param {number} radius @param {boolean} quiet */
@@ -77,6 +74,16 @@ export function quietText(count, all, missing) {
   const parts = count === 0 ? [] : [`${count} of ${all} time points, drawn faint, lie ${COURSE_WORDS["response.quiet"]}.`];
   if (missing > 0) parts.push(`${missing} of ${all} are not fitted.`);
   return parts.join(" ");
+}
+
+/** Which maps go in by default. @param {string} limit */
+export function nearText(limit) {
+  return `near-dipolar: ${limit}`;
+}
+
+/** @param {number} group counted from 0 @param {string[]} cells */
+export function groupCaption(group, [dipoles, people]) {
+  return `Group ${group + 1}: ${dipoles} ${dipoles === "1" ? "dipole" : "dipoles"}, ${people} people`;
 }
 
 /** A number of groups to choose. @param {number} count @param {string} silhouette or empty */

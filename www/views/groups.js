@@ -5,7 +5,7 @@ import { paintDipoleLegend } from "../draw/dipoles.js";
 import { paintMapDisc } from "../draw/disc.js";
 import { copyText } from "../export/out.js";
 import { cellsText } from "../export/table.js";
-import { countOptionText, memberText } from "../text/courses.js";
+import { countOptionText, groupCaption, memberText, nearText } from "../text/courses.js";
 import { enteredNumber, shortName, typeset } from "../text/figures.js";
 import { mapWords, shareAtText, word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
@@ -47,6 +47,8 @@ export function showGroups(session) {
   /** @type {{ decomposition: Decomposition, rows: { row: MapRow, index: number }[] }[]} */
   let members = [];
   let asked = "";
+  /** What was given up. */
+  let halted = "";
 
   /** What goes in of each recording. */
   function goingIn() {
@@ -65,24 +67,26 @@ export function showGroups(session) {
     return { id: decomposition.id, index, row, position: row.canonical_mm.map((part) => part / radius), direction: row.canonical_direction, rv: row.rv };
   }
 
-  const dipoles = () =>
+  const listed = () =>
     (found?.groups ?? []).flatMap(({ members: own, position, axis: direction }, at) => [
       ...own.map(([member, one]) => ({ ...dipoleOf(member, one), axis: true, at, faint: false })),
       { id: -1, index: -1, position, direction, rv: 0, axis: true, at, faint: false, bold: String(at + 1) },
     ]);
 
+  /** @type {ReturnType<typeof listed>} */
+  let dipoles = [];
   const three = threeViews(
     need("groups-views", HTMLElement),
     word("groups"),
     () => ({
-      dipoles: dipoles(),
+      dipoles,
       chosen: -1,
       byRv: false,
       shells: shellsOf(members[0]?.decomposition.answer),
       spreads: (found?.groups ?? []).flatMap(({ ellipsoid }, at) => (ellipsoid === null ? [] : [{ ellipsoid, at }])),
     }),
     (at) => {
-      const { id, index } = dipoles()[at];
+      const { id, index } = dipoles[at];
       if (id >= 0) open(id, index);
     },
   );
@@ -150,14 +154,17 @@ export function showGroups(session) {
 
   function write() {
     need("groups-found", HTMLElement).hidden = found === null;
+    need("groups-found", HTMLElement).classList.remove("waits");
     means = [];
+    dipoles = listed();
     if (found === null) return;
     const { groups, sentence, notes, criterion, count: number } = found;
+    need("groups-drawn", HTMLElement).hidden = groups.length === 0;
     rewrite(need("groups-sentence", HTMLElement), typeset(sentence));
     need("groups-notes", HTMLElement).replaceChildren(...notes.map((note) => make("li", typeset(note))));
     need("groups-maps", HTMLElement).replaceChildren(...groups.map(({ cells }, at) => {
       const figure = make("figure", "");
-      figure.append(make("figcaption", `${word("groups.group")} ${at + 1}: ${cells[0]}, ${cells[1]}`, { class: "small" }));
+      figure.append(make("figcaption", groupCaption(at, cells), { class: "small" }));
       return figure;
     }));
     fill("groups-table", groups.map(({ cells }, at) => [String(at + 1), ...cells]));
@@ -229,7 +236,7 @@ export function showGroups(session) {
     section.hidden = fitted.length < 2;
     if (section.hidden || !section.open) return;
     const [near] = which.options;
-    rewrite(near, shareAtText(threshold));
+    rewrite(near, nearText(shareAtText(threshold)));
     const distance = enteredNumber(axis.value);
     const good = distance >= 0 && distance <= 200;
     axis.setAttribute("aria-invalid", String(!good));
@@ -238,7 +245,7 @@ export function showGroups(session) {
       fitted.map(({ decomposition: { id, name, subject, answer } }) => [id, name, subject, answer?.key, answer?.fitted]),
       [...out], threshold, which.value, count.value, distance, whole,
     ]);
-    if (mine === asked) return;
+    if (mine === asked || mine === halted) return;
     if (asked !== "") session.giveUp("groups");
     asked = mine;
     keepTyped(people.tBodies[0], writePeople);
@@ -260,6 +267,7 @@ export function showGroups(session) {
     };
     try {
       found = null;
+      need("groups-found", HTMLElement).classList.add("waits");
       const groups = await session.groups(request);
       if (mine !== asked) return;
       found = groups;
@@ -267,18 +275,21 @@ export function showGroups(session) {
       if (groups !== null) await average(mine, groups);
     } catch (error) {
       if (mine !== asked) return;
-      const { code, message, hint } = /** @type {Fault} */ (error);
-      status.textContent = code === "given-up" ? word("groups.stopped") : typeset([message, hint].join(" "));
+      const { message, hint } = /** @type {Fault} */ (error);
+      status.textContent = typeset([message, hint].join(" "));
       write();
     }
     if (mine === asked) wait(false);
   }
 
   need("groups-stop", HTMLElement).addEventListener("click", () => {
+    halted = asked;
     asked = "";
     session.giveUp("groups");
     wait(false);
-    status.textContent = word("groups.stopped");
+    found = null;
+    write();
+    status.textContent = word("course.stopped");
   });
   need("copy-groups", HTMLElement).addEventListener("click", async () => {
     const named = need("groups-names", HTMLInputElement).checked;
@@ -322,7 +333,10 @@ export function showGroups(session) {
   }
   count.append(make("option", word("automatic"), { value: "" }));
   for (const control of [which, count, axis]) control.addEventListener("change", ask);
-  section.addEventListener("toggle", ask);
+  section.addEventListener("toggle", () => {
+    halted = "";
+    ask();
+  });
   const askSoon = inOne(ask);
   session.watch((state) => state.decompositions, askSoon);
   session.watch((state) => state.threshold, askSoon);

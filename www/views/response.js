@@ -36,10 +36,11 @@ export function showResponse(session) {
   let course = null;
   /** @type {boolean[]} */
   let quiet = [];
-  /** What it was asked for, and the tables that the panel was opened for. */
   let asked = "";
-  /** @type {Inputs | null} */
-  let opened = null;
+  /** Tables that the panel was opened for. @type {WeakSet<Inputs>} */
+  const opened = new WeakSet();
+  /** The tables that the interval is of. @type {Inputs | null} */
+  let spanned = null;
   /** First and last time point of the interval. @type {[number, number]} */
   let span = [0, 0];
   /** @type {FixedDipole | null} */
@@ -104,7 +105,7 @@ export function showResponse(session) {
   }
 
   /** Dipoles of all fitted time points, and the one of the interval. */
-  function dipoles() {
+  function listed() {
     const rows = session.read().answer?.maps ?? [];
     const moving = (course?.positions ?? []).flatMap((position, index) => {
       const row = rows[index];
@@ -114,26 +115,25 @@ export function showResponse(session) {
     if (fixed === null || !interval.open) return moving;
     return [...moving, { ...fixed, axis: true, rv: 0, at: 1, faint: false, bold: word("response.fixed"), index: span[0] }];
   }
+  /** @type {ReturnType<typeof listed>} */
+  let dipoles = [];
   const three = threeViews(
     need("response-views", HTMLElement),
     word("response.views"),
-    (marked) => {
-      const all = dipoles();
-      return {
-        dipoles: all,
-        chosen: marked ? all.findIndex(({ index }) => index === chosen()) : -1,
-        byRv: true,
-        shells: shellsOf(session.read().answer),
-        joined: true,
-      };
-    },
-    (at) => go(dipoles()[at].index),
+    (marked) => ({
+      dipoles,
+      chosen: marked ? dipoles.findIndex(({ index }) => index === chosen()) : -1,
+      byRv: true,
+      shells: shellsOf(session.read().answer),
+      joined: true,
+    }),
+    (at) => go(dipoles[at].index),
   );
 
   /** @param {HTMLElement} handle @param {number} index @param {boolean} shown */
   function placeHandle(handle, index, shown) {
     const now = content(false);
-    if (now === null || course === null) return;
+    if (now === null || course === null || index > last()) return;
     const plot = layOutCourse(place.clientWidth, now);
     handle.hidden = !shown;
     Object.assign(handle.style, { left: `${plot.x(index)}px`, top: `${plot.top - 6}px`, height: `${plot.bottom - plot.top + 12}px` });
@@ -146,6 +146,7 @@ export function showResponse(session) {
     const shown = content(printing);
     if (shown === null || course === null || !section.open) return;
     showFigure(place, course.sentence, printing, (width, around, penAt) => paintCourse(width, around, penAt, shown));
+    dipoles = listed();
     three.paint(printing);
     paintMap(printing);
     if (!printing) placeHandles();
@@ -165,16 +166,15 @@ export function showResponse(session) {
     edges.forEach((edge, k) => placeHandle(edge, span[k], interval.open));
   }
 
-  /** A time point is chosen; the latest wish while one is on its way. */
+  /** A time point is chosen; the latest wish while one is on its way, -1 otherwise. */
   let wished = -1;
-  let going = false;
   /** @param {number} index */
   async function go(index) {
+    const going = wished >= 0;
     wished = Math.min(last(), Math.max(0, index));
     if (going) return;
-    going = true;
-    while (wished !== chosen() && wished >= 0) await session.choose(wished);
-    going = false;
+    for (let to = -1; to !== wished; ) await session.choose((to = wished));
+    wished = -1;
   }
 
   function tell() {
@@ -235,8 +235,14 @@ export function showResponse(session) {
       field.setAttribute("aria-invalid", "false");
     });
     status.textContent = "";
-    fixed = null;
+    unfix();
     paint();
+  }
+
+  /** What was of another interval leaves its room. */
+  function unfix() {
+    fixed = null;
+    need("fixed-found", HTMLElement).classList.add("waits");
   }
 
   /** Fits one position for the interval. */
@@ -257,13 +263,14 @@ export function showResponse(session) {
       if (mine === fixing) fixed = found;
     } catch (error) {
       const { code, message, hint } = /** @type {Fault} */ (error);
-      text = code === "given-up" ? word("fixed.stopped") : typeset([message, hint].join(" "));
+      text = code === "given-up" ? word("course.stopped") : typeset([message, hint].join(" "));
     }
     clearTimeout(timer);
     if (mine !== fixing) return;
     if (fixed === null) fixing = "";
     for (const one of waits) one.hidden = true;
     status.textContent = text;
+    need("fixed-found", HTMLElement).classList.toggle("waits", fixed === null);
     need("fixed-sentence", HTMLElement).textContent = typeset(fixed?.sentence ?? "");
     writeRows(need("fixed-rows", HTMLTableElement).tBodies[0], fixed?.rows ?? []);
     paint();
@@ -277,9 +284,8 @@ export function showResponse(session) {
     section.hidden = !there;
     if (answer === null || !there) return;
     // Of a response the time point is chosen first of all.
-    if (opened !== answer.inputs) section.open = true;
-    const other = opened !== answer.inputs;
-    opened = answer.inputs;
+    if (!opened.has(answer.inputs)) section.open = true;
+    opened.add(answer.inputs);
     if (!section.open) return;
     const mine = `${answer.key} ${answer.fitted === answer.count || stopped}`;
     if (mine === asked) return;
@@ -287,13 +293,13 @@ export function showResponse(session) {
     try {
       const found = await session.response();
       if (mine !== asked) return;
-      const grown = course?.times.length !== found?.times.length;
       course = found;
       fault.textContent = "";
-      if (other || grown) firstSpan();
+      if (spanned !== answer.inputs) firstSpan();
+      spanned = answer.inputs;
       write();
       if (!fixing.startsWith(`${answer.key} `)) {
-        fixed = null;
+        unfix();
         fit();
       }
     } catch (error) {
@@ -325,7 +331,7 @@ export function showResponse(session) {
       const step = COURSE_STEPS[event.key];
       if (step === undefined || event.ctrlKey || event.metaKey || event.altKey) return;
       event.preventDefault();
-      move(handle, (handle === instant ? (going ? wished : chosen()) : span[edges.indexOf(handle)]) + step);
+      move(handle, (handle === instant ? (wished < 0 ? chosen() : wished) : span[edges.indexOf(handle)]) + step);
     });
   }
   /** What is dragged. @type {HTMLElement | null} */
