@@ -200,7 +200,8 @@ interface WhatIf {
     depth: string;
     rv: string;
     shift_mm: number;
-    depth_mm: number;
+    /** Where its bar begins and ends. */
+    depth_mm: [number, number];
     rv_change: number;
     none: string | null;
   }[];
@@ -240,6 +241,8 @@ interface Probe {
 interface Suspects {
   sentence: string;
   electrodes: { label: string; share: string; count: number; sentence: string }[];
+  /** As the report has them. */
+  found: object[];
 }
 
 /** A response over time. What a time point lacks is null; positions are in the axes and the unit of a figure. */
@@ -908,7 +911,7 @@ type WorkerTask =
   | { kind: "thumbnails"; key: number; indexes: number[]; size: number }
   | { kind: "summary"; request: SummaryRequest }
   | { kind: "matches"; keys: number[]; own: Float64Array; others: Float64Array; names: string[] }
-  | { kind: "report"; key: number; populations: GivenPopulations | null }
+  | { kind: "report"; key: number; chosen: number; explained: number[]; populations: GivenPopulations | null }
   | { kind: "comparison"; keys: number[]; members: Omit<ComparedStudy, "study">[]; settings: ComparisonSettings }
   | { kind: "population-key"; key: number }
   | { kind: "population"; key: number; population: PopulationKind; first: number; last: number }

@@ -154,7 +154,7 @@ function handOver(study, given) {
   handed.set(study, given.name);
 }
 
-/** Reports of maps with what is named, from one on for about so long. @param {Study} study @param {number} first @param {string[]} what @param {number} milliseconds */
+/** Reports of maps with what is named, from one on for about so long. @param {Study} study @param {number} first @param {string[]} what @param {number} milliseconds @returns {ReportMap[]} */
 function assessWithin(study, first, what, milliseconds) {
   if (what.length === 0) return study.fitWithin(first, milliseconds);
   const end = performance.now() + milliseconds;
@@ -163,6 +163,18 @@ function assessWithin(study, first, what, milliseconds) {
   do maps.push(/** @type {ReportMap} */ (study.assess(first + maps.length, what)));
   while (first + maps.length < study.count && performance.now() < end);
   return maps;
+}
+
+/** Electrodes that many maps blame; null for few maps. @param {number} key @param {Study} study */
+async function suspectsOf(key, study) {
+  const used = study.electrodes.filter((one) => one.used).length;
+  const all = new Float32Array(used * study.count);
+  await inSlices(key, study, { first: 0, last: study.count }, (done, milliseconds) => {
+    const some = study.unshared(done, study.count, milliseconds);
+    all.set(some, used * done);
+    return some.length / used;
+  });
+  return study.suspects(all);
 }
 
 /** @param {Study} study @returns {OpenedStudy} */
@@ -230,13 +242,23 @@ async function answerTask(message) {
     case "report": {
       const study = studyOf(message.key);
       handOver(study, message.populations);
-      const preamble = study.preamble();
-      const parts = [reportHead(preamble)];
       const total = study.count;
-      const what = total > MOST_REGIONS ? [] : ["region"];
+      const few = total <= MOST_REGIONS;
+      const suspects = (few ? await suspectsOf(message.key, study) : null)?.found ?? [];
+      const preamble = { ...study.preamble(), suspects };
+      const parts = [reportHead(preamble)];
+      const what = few ? ["region"] : [];
       if (message.populations !== null) what.push("populations", "verdict");
       await inSlices(message.key, study, { first: 0, last: total }, (first, milliseconds) => {
         const maps = assessWithin(study, first, what, milliseconds);
+        // What takes longer is told of single maps.
+        maps.forEach((_, at) => {
+          const more = [
+            ...(message.explained.includes(first + at) ? ["alternatives"] : []),
+            ...(message.chosen === first + at ? ["influence", "what_if"] : []),
+          ];
+          if (more.length > 0) maps[at] = /** @type {ReportMap} */ (study.assess(first + at, [...what, ...more]));
+        });
         for (const map of maps) parts.push(reportMap(map, parts.length === 1));
         self.postMessage({ id, progress: { done: first + maps.length, total } });
         return maps.length;
@@ -300,17 +322,8 @@ async function answerTask(message) {
       return self.postMessage({ id, value: studyOf(message.key).landscape(message.index, message.at ?? undefined) });
     case "probe":
       return self.postMessage({ id, value: studyOf(message.key).probe(message.index, message.at, message.picture) });
-    case "suspects": {
-      const study = studyOf(message.key);
-      const used = study.electrodes.filter((one) => one.used).length;
-      const all = new Float32Array(used * study.count);
-      await inSlices(message.key, study, { first: 0, last: study.count }, (done, milliseconds) => {
-        const some = study.unshared(done, study.count, milliseconds);
-        all.set(some, used * done);
-        return some.length / used;
-      });
-      return self.postMessage({ id, value: study.suspects(all) });
-    }
+    case "suspects":
+      return self.postMessage({ id, value: await suspectsOf(message.key, studyOf(message.key)) });
     case "response":
       return self.postMessage({ id, value: studyOf(message.key).response(message.fits) });
     case "fixed":

@@ -11,6 +11,8 @@ export const UNEXPLAINED = {
   key: -1, chosen: -1, alternatives: null, searching: false, influence: null, whatIf: null, landscape: null, hand: null, felt: null,
 };
 
+/** Panels whose content is made when they are opened. @typedef {"slices" | "influence" | "what-if"} ToldPanel */
+
 /** Nothing is asked unbidden before so long nothing has changed. */
 const IDLE_MS = 500;
 
@@ -50,8 +52,10 @@ export function makeExplanations(store, pool, fail, fitting, given) {
   let search = 0;
   let timer = 0;
   let idling = false;
-  /** Whether slices are looked at, and where they and the dipole are wanted: null at the best fit. */
-  let open = false;
+  /** @type {Set<ToldPanel>} */
+  const open = new Set();
+  let looking = false;
+  /** Where the slices and the dipole are wanted: null at the best fit. */
   /** @type {number[] | null} */
   let wanted = null;
   /** What was answered last. @type {{ hand: number[] | null, slices: number[] | null | undefined }} */
@@ -71,8 +75,10 @@ export function makeExplanations(store, pool, fail, fitting, given) {
 
   /** @param {Place} of @param {any} fault */
   function refused(of, fault) {
-    if (fault.code === "given-up") lookLater();
-    else if (isStill(of)) fail(fault);
+    if (fault.code === "given-up") {
+      lookLater();
+      setTimeout(look, IDLE_MS);
+    } else if (isStill(of)) fail(fault);
   }
 
   /** Verdicts that rest on other explanations stand in the list too. */
@@ -107,34 +113,50 @@ export function makeExplanations(store, pool, fail, fitting, given) {
     }
   }
 
-  /** What nobody has to ask for, one after the other. */
+  /** What opened panels are to show of the map in view. */
   async function look() {
-    timer = 0;
+    const engine = pool();
+    const { answer } = store.read();
+    const { influence, whatIf } = explainedOf(store.read());
+    const kind = open.has("influence") && influence === null ? "influence" : open.has("what-if") && whatIf === null ? "what-if" : null;
+    if (looking || engine === null || !answer?.sheet || kind === null) return;
+    looking = true;
+    try {
+      const found = await askHelper(engine, { kind, key: answer.key, index: answer.chosen });
+      tell(answer, kind === "influence" ? { influence: found } : { whatIf: found });
+    } catch (fault) {
+      refused(answer, fault);
+      return;
+    } finally {
+      looking = false;
+    }
+    look();
+  }
+
+  /** What nobody has to ask for. */
+  async function lookAtAll() {
     const engine = pool();
     const { answer, phase, arriving } = store.read();
     if (idling || engine === null || !answer?.trust || phase === "busy" || arriving) return;
     if (!fitting.isAtRest()) return lookLater();
-    const { key, chosen, count, fitted } = answer;
+    const { key, count, fitted } = answer;
+    if (store.read().suspects?.key === key || count < 2 || fitted < count) return;
     idling = true;
     try {
-      const { influence, whatIf } = explainedOf(store.read());
-      if (influence === null) tell(answer, { influence: await askHelper(engine, { kind: "influence", key, index: chosen }) });
-      if (whatIf === null && isStill(answer)) tell(answer, { whatIf: await askHelper(engine, { kind: "what-if", key, index: chosen }) });
-      if (store.read().suspects?.key === key || !isStill(answer) || count < 2 || fitted < count) return;
       /** @type {Suspects | null} */
       const suspects = await askHelper(engine, { kind: "suspects", key });
-      if (store.read().answer?.key === key) store.write({ suspects: { key, ...(suspects ?? { sentence: "", electrodes: [] }) } });
+      if (store.read().answer?.key === key) store.write({ suspects: { key, ...(suspects ?? { sentence: "", electrodes: [], found: [] }) } });
     } catch (fault) {
       refused(answer, fault);
     } finally {
       idling = false;
-      if (!isStill(answer)) lookLater();
+      if (store.read().answer?.key !== key) lookLater();
     }
   }
 
   function lookLater() {
     clearTimeout(timer);
-    timer = /** @type {any} */ (setTimeout)(look, IDLE_MS);
+    timer = /** @type {any} */ (setTimeout)(lookAtAll, IDLE_MS);
   }
 
   /** Asks for what is to be shown next, the dipole before the slices. @param {Pool} engine @param {Answer} answer */
@@ -163,7 +185,7 @@ export function makeExplanations(store, pool, fail, fitting, given) {
       for (;;) {
         const engine = pool();
         const { answer } = store.read();
-        const over = (wanted === null || wanted === shown.hand) && (!open || wanted === shown.slices);
+        const over = (wanted === null || wanted === shown.hand) && (!open.has("slices") || wanted === shown.slices);
         if (engine === null || !answer?.sheet || over) return;
         await step(engine, answer).catch((fault) => {
           shown = { hand: wanted, slices: wanted };
@@ -194,7 +216,13 @@ export function makeExplanations(store, pool, fail, fitting, given) {
       tell(answer, { alternatives: found.of.get(answer.chosen)?.alternatives ?? null });
     },
   );
-  store.watch(({ answer }) => answer?.sheet, follow);
+  store.watch(
+    ({ answer }) => answer?.sheet,
+    () => {
+      follow();
+      look();
+    },
+  );
   store.watch(
     ({ answer }) => answer?.trust,
     (trust) => {
@@ -208,6 +236,9 @@ export function makeExplanations(store, pool, fail, fitting, given) {
   store.watch(({ answer }) => answer?.verdicts, judge);
 
   return {
+    /** Maps of the present answer whose other explanations are known. */
+    explainedMaps: () => (found.key === store.read().answer?.key ? [...found.of.keys()] : []),
+
     /** Looks for other explanations of the map in view. */
     explain: () => lookForOthers(true),
 
@@ -218,11 +249,13 @@ export function makeExplanations(store, pool, fail, fitting, given) {
       if (answer !== null) tell(answer, { searching: false });
     },
 
-    /** Whether residual variance over the brain is looked at. @param {boolean} now */
-    lookAtSlices(now) {
-      open = now;
-      if (now) follow();
-      else goBack();
+    /** Whether a panel is looked at. @param {ToldPanel} panel @param {boolean} now */
+    lookAt(panel, now) {
+      if (now) open.add(panel);
+      else open.delete(panel);
+      if (panel === "slices" && !now) goBack();
+      follow();
+      look();
     },
 
     /** Puts the dipole to a place, in the axes and the unit of a figure. @param {number[]} at */

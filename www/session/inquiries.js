@@ -11,8 +11,9 @@ import { freshMaps } from "./decompositions.js";
  * @param {() => Pool | null} pool
  * @param {(fault: unknown) => void} fail
  * @param {Fitting} fitting
+ * @param {() => number[]} explained maps of the present answer whose other explanations are known
  */
-export function makeInquiries(store, pool, fail, fitting) {
+export function makeInquiries(store, pool, fail, fitting, explained) {
   /** @param {number} id */
   const answerOf = (id) => store.read().decompositions.find((one) => one.id === id)?.answer ?? null;
 
@@ -152,7 +153,7 @@ export function makeInquiries(store, pool, fail, fitting) {
       if (answer === null) return null;
       const drawn = wholePopulations();
       const populations = drawn !== null ? { name: `${drawn.key} ${drawn.kinds.noise.length / 2}`, kinds: drawn.kinds } : null;
-      return inTime((engine, take) => engine.ask({ kind: "report", key: answer.key, populations }, take));
+      return inTime((engine, take) => engine.ask({ kind: "report", key: answer.key, chosen: answer.chosen, explained: explained(), populations }, take));
     },
   };
 }

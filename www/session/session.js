@@ -369,7 +369,7 @@ export function makeSession() {
     if (answer !== null && answer.sheet === null) await inquiries.choose(answer.chosen);
   }
 
-  const inquiries = makeInquiries(store, () => client, fail, fitting);
+  const inquiries = makeInquiries(store, () => client, fail, fitting, () => explanations.explainedMaps());
   const sideBySide = makeSideBySide(store, () => client, { fitting, step, askChanged, choose: inquiries.choose });
 
   const { givenPopulations, ...populations } = makePopulations(store, () => client, fail, fitting);

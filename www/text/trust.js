@@ -39,7 +39,7 @@ export const TRUST_WORDS = {
   "region.sd": "Shift of the position per axis (root mean square), mm",
 
   alternatives: "Other explanations",
-  "alternatives.hint": "A second minimum, a mirrored pair, two free dipoles: each held against single dipoles seen through heads that are not quite as modelled.",
+  "alternatives.hint": "One dipole elsewhere, a mirrored pair, two free dipoles: each held against single dipoles seen through heads that are not quite as modelled.",
   "alternatives.go": "Look for other explanations",
   "alternatives.busy": "Looking for other explanations",
   "alternatives.kind": "Explanation",
@@ -49,14 +49,15 @@ export const TRUST_WORDS = {
   "alternatives.distance": "Apart, mm",
   "alternatives.f": "F",
   "alternatives.bic": "BIC, difference",
-  "alternatives.share": "Single dipoles that gain as much, %",
+  "alternatives.share": "Of simulated single dipoles, %",
   "alternatives.decision": "Decision",
   "alternatives.reference": "for comparison",
   "alternatives.preferred": "preferred",
   "alternatives.not-decidable": "not decidable",
   "alternatives.worse": "no better",
   "alternatives.refused": "refused",
-  "alternatives.second-minimum": "second minimum",
+  "alternatives.none": "none",
+  "alternatives.second-minimum": "one dipole, elsewhere",
   "alternatives.mirrored-pair": "mirrored pair",
   "alternatives.two-dipoles": "two free dipoles",
 
@@ -68,6 +69,8 @@ export const TRUST_WORDS = {
   "influence.rv": "RV without it, %",
   "influence.all": "All electrodes",
   "influence.few": "Only the farthest",
+
+  "told.soon": "This follows in a moment.",
 
   "what-if": "What would move it",
   "what-if.change": "If",
@@ -182,6 +185,11 @@ export function fieldText([least, most], standard) {
 export function verdictParts({ word, text }) {
   const { length } = TRUST_WORDS[`verdict.${word}`];
   return [text.slice(0, length), text.slice(length)];
+}
+
+/** @param {string} label of an electrode */
+export function leaveOutText(label) {
+  return `Leave out ${label}`;
 }
 
 /** Of an entry that was not taken, by the words beside its field. @param {string} label @param {string} hint */

@@ -4,6 +4,7 @@ import { copyText } from "../export/out.js";
 import { cellsText } from "../export/table.js";
 import { explainedOf } from "../session/explanations.js";
 import { typeset } from "../text/figures.js";
+import { beginning } from "../text/trust.js";
 import { word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { make, need } from "./element.js";
@@ -15,7 +16,7 @@ import { writeLines } from "./trust.js";
 const ALTERNATIVE_COLUMNS = ["kind", "rv", "adjusted", "parameters", "distance", "f", "bic", "share", "decision"];
 
 /** @param {Alternatives} alternatives */
-const rowsOf = ({ kinds }) => kinds.map(({ label, cells, decision }) => [label, ...cells, word(`alternatives.${decision}`)]);
+const rowsOf = ({ kinds }) => kinds.map(({ label, cells, decision }) => [label, ...cells, word(`alternatives.${cells[0] === "" ? "none" : decision}`)]);
 
 /** @param {HTMLTableElement} table @param {string[][]} rows the first has their heads */
 export function writeTable(table, [heads, ...rows]) {
@@ -65,7 +66,7 @@ export function showAlternatives(session) {
       const table = need("alternatives-table", HTMLTableElement);
       writeTable(table, [heads, ...rowsOf(alternatives)]);
       alternatives.kinds.forEach(({ kind, decision }, at) => Object.assign(table.tBodies[0].rows[at].dataset, { kind, decision }));
-      writeLines("alternatives-lines", [...alternatives.kinds.slice(1).map(({ sentence }) => sentence), ...alternatives.notes].map((text) => ({ text })));
+      writeLines("alternatives-lines", [...alternatives.kinds.slice(1).map(({ label, sentence }) => `${beginning(label)}: ${sentence}`), ...alternatives.notes].map((text) => ({ text })));
     },
   );
 }

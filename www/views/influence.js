@@ -3,6 +3,7 @@
 import { paintInfluence } from "../draw/influence.js";
 import { explainedOf } from "../session/explanations.js";
 import { typeset } from "../text/figures.js";
+import { leaveOutText } from "../text/trust.js";
 import { word } from "../text/words.js";
 import { writeTable } from "./alternatives.js";
 import { make, need } from "./element.js";
@@ -18,15 +19,28 @@ import { writeLines } from "./trust.js";
 const FEW_ELECTRODES = 8;
 const INFLUENCE_WIDE = 330;
 
-/** A block whose room stays while the next map's is found out. @param {string} id @param {boolean} there */
-export function keepRoom(id, there) {
-  const block = need(id, HTMLElement);
-  if (there) block.hidden = false;
-  block.classList.toggle("waits", !there);
+/** Asked for only while it is looked at. @param {Session} session @param {"influence" | "what-if"} id */
+export function askWhenOpen(session, id) {
+  const panel = need(id, HTMLDetailsElement);
+  panel.addEventListener("toggle", () => session.lookAt(id, panel.open));
+}
+
+/**
+ * Its sentence, and whether there is anything of the map in view; the room of what was shown stays until then.
+ * @template {{ sentence: string }} T
+ * @param {"influence" | "what-if"} id
+ * @param {T | null} told
+ * @returns {told is T}
+ */
+export function toldIn(id, told) {
+  need(`${id}-sentence`, HTMLElement).replaceChildren(...withTerms(typeset(told?.sentence ?? word("told.soon"))));
+  need(id, HTMLElement).classList.toggle("waiting", told === null);
+  return told !== null;
 }
 
 /** @param {Session} session */
 export function showInfluence(session) {
+  askWhenOpen(session, "influence");
   const more = need("influence-more", HTMLButtonElement);
   let all = false;
   const told = () => explainedOf(session.read()).influence;
@@ -65,9 +79,7 @@ export function showInfluence(session) {
   session.watch(
     (state) => explainedOf(state).influence,
     (influence) => {
-      keepRoom("influence", influence !== null);
-      if (influence === null) return;
-      need("influence-sentence", HTMLElement).replaceChildren(...withTerms(typeset(influence.sentence)));
+      if (!toldIn("influence", influence)) return;
       writeElectrodes();
       writeLines("influence-notes", influence.notes.map((text) => ({ text })));
       paint();
@@ -80,7 +92,19 @@ export function showInfluence(session) {
       const list = need("suspects", HTMLElement);
       list.hidden = !suspects?.electrodes.length;
       need("suspects-sentence", HTMLElement).textContent = typeset(suspects?.sentence ?? "");
-      need("suspects-lines", HTMLElement).replaceChildren(...(suspects?.electrodes ?? []).map(({ sentence }) => make("li", typeset(sentence))));
+      need("suspects-lines", HTMLElement).replaceChildren(...(suspects?.electrodes ?? []).map(({ label, sentence }) => {
+        const line = make("li", `${typeset(sentence)} `);
+        const out = make("button", typeset(leaveOutText(label)), { type: "button", class: "quiet" });
+        out.addEventListener("click", () => {
+          // It goes with what is said of it.
+          need("ledger", HTMLElement).focus();
+          session.use(label, false);
+        });
+        for (const kind of ["pointerenter", "focus"]) out.addEventListener(kind, () => session.point(label));
+        for (const kind of ["pointerleave", "blur"]) out.addEventListener(kind, () => session.point(null));
+        line.append(out);
+        return line;
+      }));
     },
   );
 }

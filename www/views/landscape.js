@@ -148,7 +148,7 @@ export function showLandscape(session) {
     const outside = relatedTarget instanceof Node && !panel.contains(relatedTarget);
     if (outside && told().hand?.kept === false) session.returnDipole();
   });
-  panel.addEventListener("toggle", () => session.lookAtSlices(panel.open));
+  panel.addEventListener("toggle", () => session.lookAt("slices", panel.open));
   keep.addEventListener("click", () => {
     session.keepDipole();
     back.focus();

@@ -7,20 +7,20 @@ import { typeset } from "../text/figures.js";
 import { word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { make, need } from "./element.js";
-import { keepRoom } from "./influence.js";
-import { withTerms } from "./terms.js";
+import { askWhenOpen, toldIn } from "./influence.js";
 import { writeLines } from "./trust.js";
 
 /** @import { Session } from "../session/session.js" */
 
 const WHAT_IF_COLUMNS = ["change", "shift", "depth", "rv"];
 
-/** A number with its bar; one with a sign goes to either side. @param {string} text @param {number} share of the longest @param {boolean} signed */
-function barCell(text, share, signed) {
+/** A number with its bar, from and to in parts of the longest; one with a sign goes to either side. @param {string} text @param {number[]} ends @param {boolean} signed */
+function barCell(text, ends, signed) {
   const cell = make("td", "");
   const bar = make("span", "", { class: signed ? "cause-bar signed-bar" : "cause-bar", "aria-hidden": "true" });
-  bar.style.setProperty("--share", String(Math.abs(share)));
-  bar.style.setProperty("--from", String(Math.min(0, share)));
+  const from = Math.min(...ends);
+  bar.style.setProperty("--share", String(Math.max(...ends) - from));
+  bar.style.setProperty("--from", String(from));
   cell.append(make("span", typeset(text), { class: "bar-value" }), bar);
   return cell;
 }
@@ -32,13 +32,14 @@ function rowElements(rows) {
     const row = make("tr", "", { "data-change": change });
     row.append(make("th", typeset(label), { scope: "row" }));
     if (none !== null) row.append(make("td", typeset(none), { colspan: "3", class: "small long" }));
-    else row.append(barCell(shift, shift_mm / most, false), barCell(depth, depth_mm / most, true), make("td", typeset(rv)));
+    else row.append(barCell(shift, [0, shift_mm / most], false), barCell(depth, depth_mm.map((mm) => mm / most), true), make("td", typeset(rv)));
     return row;
   });
 }
 
 /** @param {Session} session */
 export function showWhatIf(session) {
+  askWhenOpen(session, "what-if");
   const copy = need("copy-what-if", HTMLButtonElement);
   const heads = WHAT_IF_COLUMNS.map((code) => word(`what-if.${code}`));
   copy.addEventListener("click", async () => {
@@ -49,9 +50,7 @@ export function showWhatIf(session) {
   session.watch(
     (state) => explainedOf(state).whatIf,
     (whatIf) => {
-      keepRoom("what-if", whatIf !== null);
-      if (whatIf === null) return;
-      need("what-if-sentence", HTMLElement).replaceChildren(...withTerms(typeset(whatIf.sentence)));
+      if (!toldIn("what-if", whatIf)) return;
       const table = need("what-if-table", HTMLTableElement);
       table.tHead?.rows[0].replaceChildren(...heads.map((text) => make("th", text, { scope: "col" })));
       table.tBodies[0].replaceChildren(...rowElements(whatIf.rows));

@@ -234,7 +234,7 @@ impl Study {
     /// Electrodes that hold strikingly much of what is left over, from [`Self::unshared`] of all maps; `None` for fewer than
     /// ten that leave something over.
     pub fn suspects(&self, unshared: &[f32]) -> Option<Suspects> {
-        Some(Suspects::new(&self.suspect_reports(unshared)?))
+        Some(Suspects::new(self.suspect_reports(unshared)?))
     }
 
     /// The same in numbers.

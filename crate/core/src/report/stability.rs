@@ -170,6 +170,8 @@ pub struct Suspects {
     pub sentence: String,
     /// Electrodes to be checked.
     pub electrodes: Vec<SuspectWords>,
+    /// The same in numbers, as reports have them.
+    pub found: Vec<SuspectReport>,
 }
 
 /// A suspect in words.
@@ -187,7 +189,7 @@ pub struct SuspectWords {
 
 impl Suspects {
     /// In words.
-    pub fn new(found: &[SuspectReport]) -> Self {
+    pub fn new(found: Vec<SuspectReport>) -> Self {
         let words = |one: &SuspectReport| {
             let counts = one
                 .near_dipolar
@@ -218,6 +220,7 @@ impl Suspects {
                 ),
             },
             electrodes: found.iter().map(words).collect(),
+            found,
         }
     }
 }
@@ -248,8 +251,8 @@ pub struct WhatIfWords {
     pub rv: String,
     /// For drawings.
     pub shift_mm: f64,
-    /// The same of the depth; 0 where its sign is not told.
-    pub depth_mm: f64,
+    /// For drawings, from and to.
+    pub depth_mm: [f64; 2],
     /// Residual variance less that of the fit.
     pub rv_change: f64,
     /// Why it does not apply.
@@ -304,6 +307,7 @@ impl WhatIf {
     pub fn new(found: &[(Change, WhatIfReport)], dipole: &EquivalentDipole, rv: f64) -> Self {
         let words = |(change, report): &(Change, WhatIfReport)| {
             let misplaced = matches!(change, Change::Electrodes(_));
+            let deeper = report.depth_mm.unwrap_or(0.0);
             let depth = report.depth_mm.map_or_else(String::new, |mm| match (misplaced, tenths(mm)) {
                 (true, mm) => format!("± {mm}"),
                 (false, mm) if mm.starts_with(['-', '−']) || mm == "0.0" => mm.replace('-', "−"),
@@ -316,7 +320,7 @@ impl WhatIf {
                 depth,
                 rv: report.rv.map_or_else(String::new, percent),
                 shift_mm: report.shift_mm.unwrap_or(0.0),
-                depth_mm: report.depth_mm.filter(|_| !misplaced).unwrap_or(0.0),
+                depth_mm: [if misplaced { -deeper } else { 0.0 }, deeper],
                 rv_change: report.rv.map_or(0.0, |other| other - rv),
                 none: report.shift_mm.is_none().then(|| change.lacking()),
             }
