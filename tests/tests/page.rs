@@ -111,7 +111,7 @@ fn the_download_is_the_report(browser: Browser) {
     assert_eq!(report["format"], "inward-report");
     assert_eq!(report["version"], 1);
     let keys: Vec<&String> = report.as_object().unwrap().keys().collect();
-    let expected = "electrodes format head inputs maps notes populations program settings understood version";
+    let expected = "electrodes format head inputs maps notes populations program settings suspects understood version";
     assert_eq!(keys, expected.split(' ').collect::<Vec<_>>());
     assert!(report["maps"][0]["region"]["volume_ml"].as_f64().unwrap() > 0.0);
     let hashes: Vec<&str> =
