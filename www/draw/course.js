@@ -42,18 +42,19 @@ export function layOutCourse(width, { times, plots }) {
   const [from, to] = [times[0], times[times.length - 1]];
   const [left, right] = [COURSE.left, width - COURSE.right];
   const span = to - from || 1;
-  /** @param {number} index */
-  const x = (index) => left + ((right - left) * (times[index] - from)) / span;
+  /** @param {number} time */
+  const along = (time) => left + ((right - left) * (time - from)) / span;
   return {
     left,
     right,
     top: COURSE.top,
     bottom: (plots.length - 1) * COURSE.step + COURSE.top + COURSE.high,
     height: plots.length * COURSE.step + COURSE.below,
-    x,
-    /** The time point nearest to a place. @param {number} place */
-    index: (place) => times.reduce((best, _, at) => (Math.abs(x(at) - place) < Math.abs(x(best) - place) ? at : best), 0),
-    time: (/** @type {number} */ time) => left + ((right - left) * (time - from)) / span,
+    along,
+    /** @param {number} index */
+    x: (index) => along(times[index]),
+    /** The time point nearest to a place. @param {number} x */
+    index: (x) => times.reduce((best, time, at) => (Math.abs(along(time) - x) < Math.abs(along(times[best]) - x) ? at : best), 0),
   };
 }
 
@@ -88,7 +89,7 @@ export function paintCourse(width, around, penAt, content) {
       pen,
       { left, right, top, bottom },
       {
-        across: moments.map((time) => [place.time(time), last ? timeText(time, "") : ""]),
+        across: moments.map((time) => [place.along(time), last ? timeText(time, "") : ""]),
         up: ticks.map((tick) => [y(tick), timeText(tick, "")]),
         words: { x: last ? words : "", y: plot.words },
       },

@@ -31,10 +31,9 @@ export const COURSE_WORDS = {
   "fixed.invalid": "Two times of the response, please, with a point for decimals.",
   groups: "Dipoles of several people",
   "groups.which": "Maps that go in",
+  "groups.near": "near-dipolar",
   "groups.all": "all that are fitted",
   "groups.count": "Groups",
-  "groups.axis": "At one place, axes at a right angle count as",
-  "groups.axis-invalid": "A distance from 0 to 200 mm, please.",
   "groups.waiting": "Grouped as soon as all maps are fitted.",
   "groups.people": "Recordings and people",
   "groups.recording": "Recording",
@@ -74,21 +73,6 @@ export function quietText(count, all, missing) {
   const parts = count === 0 ? [] : [`${count} of ${all} time points, drawn faint, lie ${COURSE_WORDS["response.quiet"]}.`];
   if (missing > 0) parts.push(`${missing} of ${all} are not fitted.`);
   return parts.join(" ");
-}
-
-/** Which maps go in by default. @param {string} limit */
-export function nearText(limit) {
-  return `near-dipolar: ${limit}`;
-}
-
-/** @param {number} group counted from 0 @param {string[]} cells */
-export function groupCaption(group, [dipoles, people]) {
-  return `Group ${group + 1}: ${dipoles} ${dipoles === "1" ? "dipole" : "dipoles"}, ${people} people`;
-}
-
-/** A number of groups to choose. @param {number} count @param {string} silhouette or empty */
-export function countOptionText(count, silhouette) {
-  return silhouette === "" ? String(count) : `${count} (silhouette ${silhouette})`;
 }
 
 /** A member of a group. @param {MapRow} row @param {Decomposition} of */

@@ -5,8 +5,8 @@ import { paintDipoleLegend } from "../draw/dipoles.js";
 import { paintMapDisc } from "../draw/disc.js";
 import { copyText } from "../export/out.js";
 import { cellsText } from "../export/table.js";
-import { countOptionText, groupCaption, memberText, nearText } from "../text/courses.js";
-import { enteredNumber, shortName, typeset } from "../text/figures.js";
+import { memberText } from "../text/courses.js";
+import { shortName, typeset } from "../text/figures.js";
 import { mapWords, shareAtText, word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { make, need, rewrite } from "./element.js";
@@ -27,6 +27,9 @@ const MOST_LISTED = 200;
 const GROUP_COLUMNS = ["group", "dipoles", "persons", "place", "spread", "turn", "rv"];
 const PLACE_COLUMNS = ["x, mm", "y, mm", "z, mm"];
 
+/** @param {number} at */
+const groupName = (at) => `${word("groups.group")} ${at + 1}`;
+
 /** The rim of a disc. */
 const RIM = Float32Array.from({ length: 144 }, (_, at) => (at % 2 ? Math.sin : Math.cos)((Math.PI * (at >> 1)) / 36));
 
@@ -35,7 +38,6 @@ export function showGroups(session) {
   const section = need("groups", HTMLDetailsElement);
   const which = need("groups-which", HTMLSelectElement);
   const count = need("groups-count", HTMLSelectElement);
-  const axis = need("groups-axis", HTMLInputElement);
   const status = need("groups-status", HTMLElement);
   const waits = [need("groups-progress", HTMLProgressElement), need("groups-stop", HTMLElement)];
   const [progress] = /** @type {[HTMLProgressElement]} */ (/** @type {unknown} */ (waits));
@@ -93,7 +95,7 @@ export function showGroups(session) {
   const legendContent = () => ({
     byRv: false,
     threshold: 0,
-    names: (found?.groups ?? []).map((_, at) => ({ name: `${word("groups.group")} ${at + 1}`, at })),
+    names: (found?.groups ?? []).map((_, at) => ({ name: groupName(at), at })),
     words: "",
   });
   const paint = keepPainted(section, (printing) => {
@@ -162,9 +164,9 @@ export function showGroups(session) {
     need("groups-drawn", HTMLElement).hidden = groups.length === 0;
     rewrite(need("groups-sentence", HTMLElement), typeset(sentence));
     need("groups-notes", HTMLElement).replaceChildren(...notes.map((note) => make("li", typeset(note))));
-    need("groups-maps", HTMLElement).replaceChildren(...groups.map(({ cells }, at) => {
+    need("groups-maps", HTMLElement).replaceChildren(...groups.map((_, at) => {
       const figure = make("figure", "");
-      figure.append(make("figcaption", groupCaption(at, cells), { class: "small" }));
+      figure.append(make("figcaption", groupName(at), { class: "small" }));
       return figure;
     }));
     fill("groups-table", groups.map(({ cells }, at) => [String(at + 1), ...cells]));
@@ -189,10 +191,6 @@ export function showGroups(session) {
       row.append(make("th", String(one), { scope: "row" }), cell);
       return row;
     }));
-    const held = count.value;
-    count.replaceChildren(make("option", word("automatic"), { value: "" }), ...Array.from({ length: MOST_GROUPS }, (_, at) =>
-      make("option", countOptionText(at + 1, criterion.find(({ groups: one }) => one === at + 1)?.text ?? ""), { value: String(at + 1) })));
-    count.value = held;
     paint();
   }
 
@@ -236,22 +234,19 @@ export function showGroups(session) {
     section.hidden = fitted.length < 2;
     if (section.hidden || !section.open) return;
     const [near] = which.options;
-    rewrite(near, nearText(shareAtText(threshold)));
-    const distance = enteredNumber(axis.value);
-    const good = distance >= 0 && distance <= 200;
-    axis.setAttribute("aria-invalid", String(!good));
+    rewrite(near, `${word("groups.near")}: ${shareAtText(threshold)}`);
     const whole = fitted.every(({ decomposition: { answer } }) => answer?.fitted === answer?.count) || stopped;
     const mine = JSON.stringify([
       fitted.map(({ decomposition: { id, name, subject, answer } }) => [id, name, subject, answer?.key, answer?.fitted]),
-      [...out], threshold, which.value, count.value, distance, whole,
+      [...out], threshold, which.value, count.value, whole,
     ]);
     if (mine === asked || mine === halted) return;
     if (asked !== "") session.giveUp("groups");
     asked = mine;
     keepTyped(people.tBodies[0], writePeople);
-    status.textContent = good ? (whole ? "" : word("groups.waiting")) : word("groups.axis-invalid");
-    wait(good && whole);
-    if (!good || !whole) return;
+    status.textContent = whole ? "" : word("groups.waiting");
+    wait(whole);
+    if (!whole) return;
     members = goingIn().filter(({ decomposition: { id } }) => !out.has(id));
     const request = {
       members: members.map(({ decomposition: { name, subject }, rows }, member) => ({
@@ -263,7 +258,6 @@ export function showGroups(session) {
         }),
       })),
       groups: count.value === "" ? null : Number(count.value),
-      axisMm: distance,
     };
     try {
       found = null;
@@ -331,8 +325,8 @@ export function showGroups(session) {
   for (const [id, codes] of /** @type {[string, string[]][]} */ ([["groups-people", ["recording", "person", "dipoles"]], ["groups-table", GROUP_COLUMNS]])) {
     need(id, HTMLTableElement).tHead?.rows[0].append(...codes.map((code) => make("th", word(`groups.${code}`), { scope: "col" })));
   }
-  count.append(make("option", word("automatic"), { value: "" }));
-  for (const control of [which, count, axis]) control.addEventListener("change", ask);
+  count.append(make("option", word("automatic"), { value: "" }), ...Array.from({ length: MOST_GROUPS }, (_, at) => make("option", String(at + 1))));
+  for (const control of [which, count]) control.addEventListener("change", ask);
   section.addEventListener("toggle", () => {
     halted = "";
     ask();

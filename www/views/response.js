@@ -367,7 +367,8 @@ export function showResponse(session) {
       field.setAttribute("aria-invalid", String(!good));
       status.textContent = good ? "" : `${word("fixed.invalid")} ${timeText(times[0], "")} – ${timeText(times[times.length - 1], course.unit)}`;
       if (!good) return;
-      const nearest = times.reduce((best, time, at) => (Math.abs(time - entered) < Math.abs(times[best] - entered) ? at : best), 0);
+      const { index, along } = layOutCourse(SAVED_WIDTH, { times, plots: [] });
+      const nearest = index(along(entered));
       setSpan(k === 0 ? [nearest, span[1]] : [span[0], nearest]);
       fit();
     });
