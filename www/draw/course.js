@@ -124,16 +124,16 @@ export function paintCourse(width, around, penAt, content) {
     if (plot.level !== null) writeHaloed(pen, plot.level.text, right - pen.measureText(plot.level.text).width / 2 - 4, y(plot.level.value) - 8, width, around);
     if (k === 0) marks.forEach(({ index, text }, at) => writeHaloed(pen, text, place.x(index), top + 6 + 13 * at, width, around));
     // Names with a piece of their line, beside what the plot is of.
-    let at = 4 + pen.measureText(plot.words).width + 14;
+    let at = 4 + pen.measureText(plot.words).width + 10;
     pen.textAlign = "start";
     for (const line of plot.lines.filter(({ name }) => name !== "")) {
       pen.beginPath();
       pen.moveTo(at, 8);
-      pen.lineTo(at + 18, 8);
+      pen.lineTo(at + 16, 8);
       strokeLine(pen, seriesColour(line.at, around.theme), line.at, 1.75, 1);
       pen.fillStyle = around.ink;
-      pen.fillText(line.name, at + 23, 8);
-      at += pen.measureText(line.name).width + 35;
+      pen.fillText(line.name, at + 19, 8);
+      at += pen.measureText(line.name).width + 27;
     }
   });
   return place.height;

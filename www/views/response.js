@@ -161,6 +161,9 @@ export function showResponse(session) {
     paintMapDisc(canvas, { ...picture, raster: picture.measured, sign: 1, words: mapWords() }, surroundingsOf(canvas, printing));
   }
 
+  // Of thousands of time points each takes longer than a key that is held.
+  const [paintSoon, paintHeads] = [inOne(() => paint()), inOne(() => three.paint(false))];
+
   function placeHandles() {
     placeHandle(instant, chosen(), true);
     edges.forEach((edge, k) => placeHandle(edge, span[k], interval.open));
@@ -185,7 +188,7 @@ export function showResponse(session) {
     }
     if (!section.open) return;
     placeHandles();
-    three.paint(false);
+    paintHeads();
   }
 
   function writeNoise() {
@@ -236,7 +239,8 @@ export function showResponse(session) {
     });
     status.textContent = "";
     unfix();
-    paint();
+    placeHandles();
+    paintSoon();
   }
 
   /** What was of another interval leaves its room. */
