@@ -120,6 +120,14 @@ fn the_dipole_is_moved_by_keys(page: &Page) {
     assert!(!page.visible("#by-hand"));
     page.hover("#sentence", 0, 0);
     page.until("the hint", |page| page.text("#slice-readout").starts_with("Point at a place"));
+
+    // A click takes the dipole along.
+    page.click_at("#slice-left", 15, -15);
+    page.until("the dipole by hand", |page| {
+        page.visible("#by-hand") && followers(page).iter().zip(&best).all(|(now, before)| now != before)
+    });
+    page.press(ESCAPE);
+    back(page);
 }
 
 fn panels_are_worked_by_keyboard(browser: Browser) {

@@ -242,9 +242,10 @@ export function makeExplanations(store, pool, fail, fitting, given) {
     /** Looks for other explanations of the map in view. */
     explain: () => lookForOthers(true),
 
-    /** Waits for them no more. */
+    /** Gives the search up. */
     stopExplaining() {
       search++;
+      pool()?.giveUp("alternatives");
       const { answer } = store.read();
       if (answer !== null) tell(answer, { searching: false });
     },

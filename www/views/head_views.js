@@ -4,6 +4,7 @@ import { surroundingsOf } from "../draw/canvas.js";
 import { electrodeOnHead, paintHead } from "../draw/head.js";
 import { explainedOf } from "../session/explanations.js";
 import { typeset } from "../text/figures.js";
+import { beginning } from "../text/trust.js";
 import { standpointText, word } from "../text/words.js";
 import { need } from "./element.js";
 import { keepPainted } from "./surface.js";
@@ -169,7 +170,7 @@ export function showHeadViews(session) {
   session.watch(
     (state) => explainedOf(state).alternatives,
     (others) => {
-      need("others-alt", HTMLElement).textContent = typeset(others?.alt ?? "");
+      need("others-alt", HTMLElement).textContent = beginning(others?.alt ?? "");
       paint();
     },
   );
