@@ -5,7 +5,7 @@ use super::trust::scaled;
 use crate::fit::{Fit, Fitter, LocalFitter};
 use crate::forward::LeadField;
 use crate::head::{ShellSpec, Shells, Sphere};
-use crate::math::{Vec3, mean};
+use crate::math::{Vec3, mean, sort_by_number};
 use crate::placement::Placed;
 use crate::report::{
     Change, FittedMap, Influence, InfluenceReport, Settings, SuspectReport, Suspects, WhatIf, WhatIfReport,
@@ -190,8 +190,7 @@ impl Study {
     /// Fitted to the highest electrodes.
     fn upper_sphere(&self) -> Option<Sphere> {
         let mut electrodes: Vec<&Placed> = self.placement.electrodes.iter().collect();
-        let height = |e: &Placed| self.placement.canonical(e.position_mm)[2];
-        electrodes.sort_by(|a, b| height(b).total_cmp(&height(a)));
+        sort_by_number(&mut electrodes, |e| -self.placement.canonical(e.position_mm)[2]);
         let count = libm::ceil(UPPER * electrodes.len() as f64) as usize;
         let points: Vec<Vec3> = electrodes.iter().take(count).map(|e| e.position_mm).collect();
         let [least, most] = [0.7, 1.4].map(|times| times * self.placement.sphere.sphere.radius);
@@ -253,7 +252,7 @@ impl Study {
         let share = |place: usize| sums[place] / maps as f64;
         let limit = SUSPECT_SHARE.max(SUSPECT_TIMES / electrodes as f64);
         let mut places: Vec<usize> = (0..electrodes).filter(|place| share(*place) >= limit).collect();
-        places.sort_by(|a, b| share(*b).total_cmp(&share(*a)));
+        sort_by_number(&mut places, |place| -share(*place));
         let with = if places.is_empty() { Vec::new() } else { self.residual_variances(&self.fitter, None) };
         let used: Vec<&Placed> = self.placement.used().collect();
         let report = |place: usize| {

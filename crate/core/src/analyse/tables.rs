@@ -6,6 +6,7 @@ use crate::read::{Content, Reading, read};
 use crate::report::{Input, Settings};
 use crate::understand::{Role, Source, Understood, Wishes, understand};
 use sha2::{Digest, Sha256};
+use std::collections::HashSet;
 use std::sync::Arc;
 
 /// Files of a request with what was read of them.
@@ -37,10 +38,9 @@ impl Tables {
             }
             false => request.files.iter().map(|(name, bytes)| (*name, None, *bytes)).collect(),
         };
-        let mut seen: Vec<&str> = given.iter().map(|(name, ..)| *name).collect();
-        seen.sort_unstable();
-        if let Some(pair) = seen.windows(2).find(|pair| pair.first() == pair.last()) {
-            let problem = format!("two files are named `{}`", pair.first().copied().unwrap_or_default());
+        let mut seen = HashSet::new();
+        if let Some((name, ..)) = given.iter().find(|(name, ..)| !seen.insert(*name)) {
+            let problem = format!("two files are named `{name}`");
             return Err(Settings::unknown(problem));
         }
         let total: usize = given.iter().map(|(.., bytes)| bytes.len()).sum();

@@ -1,4 +1,4 @@
-use crate::math::{Hierarchy, Vec3, silhouettes};
+use crate::math::{Hierarchy, Vec3, silhouettes, sort_by_number};
 use core::ops::RangeInclusive;
 
 /// Scalp radius of the head that dipoles of several people are put into, each scaled by the radius of its own.
@@ -51,7 +51,7 @@ impl Grouping {
         let groups = hierarchy.cut(count);
         let mut sizes: Vec<(usize, usize)> = (0..count).map(|group| (group, 0)).collect();
         groups.iter().for_each(|group| sizes[*group].1 += 1);
-        sizes.sort_by_key(|(_, size)| core::cmp::Reverse(*size));
+        sort_by_number(&mut sizes, |(_, size)| -(*size as f64));
         let mut place = vec![0; count];
         sizes.iter().enumerate().for_each(|(at, (group, _))| place[*group] = at);
         Self { criterion, count, groups: groups.into_iter().map(|group| place[group]).collect() }

@@ -1,3 +1,4 @@
+use crate::math::sort_by_number;
 use crate::simulate::Draw;
 
 /// Fits of the simulated maps of one kind, to set others against.
@@ -18,7 +19,7 @@ impl Reference {
     /// Of draws in their order; `None` for none.
     pub fn new(draws: Vec<Draw>) -> Option<Self> {
         let mut sorted: Vec<f64> = draws.iter().map(|draw| draw.residual_variance).collect();
-        sorted.sort_by(f64::total_cmp);
+        sort_by_number(&mut sorted, |rv| *rv);
         (!draws.is_empty()).then_some(Self { draws, sorted })
     }
 

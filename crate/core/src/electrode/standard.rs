@@ -1,7 +1,7 @@
 use super::{Kind, Label, Reading};
 use crate::math::Vec3;
 use core::f64::consts::PI;
-use std::collections::BTreeMap;
+use std::collections::HashMap;
 use std::sync::LazyLock;
 
 /// A named site of the idealised 10-5 system, on the unit sphere: x right, y front, z up.
@@ -129,7 +129,7 @@ fn even(odd: &str) -> String {
 
 /// The site that a name stands for, upper and lower case alike; T3 to T6 are not among the names, see [`modern_name`].
 pub fn site(name: &str) -> Option<&'static StandardSite> {
-    static INDEX: LazyLock<BTreeMap<String, usize>> = LazyLock::new(|| {
+    static INDEX: LazyLock<HashMap<String, usize>> = LazyLock::new(|| {
         standard_sites().iter().enumerate().map(|(index, site)| (site.name.to_lowercase(), index)).collect()
     });
     INDEX.get(&name.to_lowercase()).map(|&index| &standard_sites()[index])

@@ -5,7 +5,7 @@ use super::{FAR, Placed, Wishes, farthest};
 use crate::electrode::{Electrode, Grade, Kind, Label, Landmark, Reading};
 use crate::finding::{Choice, Code, Error, Finding, Origin, Place};
 use crate::head::{Axes, AxesName, HEAD_RADII_MM, Landmarks, LengthUnit, Orientation, Sphere};
-use crate::math::Vec3;
+use crate::math::{Vec3, sort_by_number};
 
 /// Axes that labels contradict by more than this are worth a warning.
 const CONTRADICTED_DEGREES: f64 = 45.0;
@@ -226,7 +226,7 @@ pub(super) fn find_axes(
         let off = |arm: Vec3, site: Vec3| libm::acos(axes.to_canonical(arm).dot(site).clamp(-1.0, 1.0)).to_degrees();
         let named = named.iter().map(|(electrode, (arm, site))| (off(*arm, *site), electrode.label.to_string()));
         let mut far: Vec<(f64, String)> = named.filter(|(off, _)| *off > most).collect();
-        far.sort_by(|a, b| b.0.total_cmp(&a.0));
+        sort_by_number(&mut far, |far| -far.0);
         if let Some((degrees, _)) = far.first() {
             let finding = Finding::new(Code::LabelsMisplaced).at(at()).with("degrees", degrees.round() as usize);
             notes.push(finding.with("labels", far.into_iter().map(|(_, label)| label).collect::<Vec<String>>()));

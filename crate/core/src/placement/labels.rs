@@ -5,7 +5,7 @@ use crate::electrode::{Electrode, Grade, Kind, Label, Other, Reading, Second};
 use crate::finding::{Code, Error, Finding, Place};
 use crate::map::Maps;
 use crate::math::Vec3;
-use std::collections::{BTreeMap, BTreeSet};
+use std::collections::{BTreeMap, HashMap, HashSet};
 
 /// What became of the labels.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -55,11 +55,10 @@ pub(super) fn readings(labels: &[&Label]) -> Vec<Reading> {
     };
     // Sites with one letter reach number 12 in some caps, ears, mastoids and eyes number 2.
     let beyond = |(letter, number): &(char, u32)| *number > if "ame".contains(*letter) { 2 } else { 12 };
-    let series: BTreeSet<char> =
-        readings.iter().filter_map(numbered).filter(beyond).map(|(letter, _)| letter).collect();
+    let series: String = readings.iter().filter_map(numbered).filter(beyond).map(|(letter, _)| letter).collect();
     for (reading, label) in readings.iter_mut().zip(labels) {
         match numbered(reading) {
-            Some((letter, _)) if series.contains(&letter) => forget(reading, label),
+            Some((letter, _)) if series.contains(letter) => forget(reading, label),
             Some(('e', 1 | 2)) => reading.kind = Kind::Other(Other::Eye),
             _ => {}
         }
@@ -89,7 +88,7 @@ pub(super) fn match_labels(
     let positioned =
         |label: &Label| index.exact(label).is_some_and(|i| electrodes.get(i).is_some_and(|e| e.position.is_some()));
 
-    let keys = |labels: &[Label]| labels.iter().map(Label::key).collect::<BTreeSet<_>>();
+    let keys = |labels: &[Label]| labels.iter().map(Label::key).collect::<HashSet<_>>();
     let (scalp, others) = (keys(&wishes.scalp), keys(&wishes.other_channels));
     let mut rows = Vec::new();
     for (row, (label, reading)) in maps.labels.iter().zip(&names.readings).enumerate() {
@@ -146,7 +145,7 @@ pub(super) fn match_labels(
         return Err(unmatched(maps, electrodes));
     }
 
-    let valued: BTreeSet<String> = placed.iter().map(|e| e.label.key()).collect();
+    let valued: HashSet<String> = placed.iter().map(|e| e.label.key()).collect();
     for (electrode, reading) in electrodes.iter().zip(&known.readings) {
         if valued.contains(&electrode.label.key()) || (electrode.position.is_none() && measured) {
             continue;
@@ -195,12 +194,12 @@ pub(super) fn loose_keys(reading: &Reading) -> Vec<String> {
 /// Electrodes of a table by what they are called.
 struct Index {
     /// By the label as written, the key in it, the site it stands for.
-    levels: [BTreeMap<String, Vec<usize>>; 3],
+    levels: [HashMap<String, Vec<usize>>; 3],
 }
 
 impl Index {
     fn new(names: &Names) -> Self {
-        let mut levels: [BTreeMap<String, Vec<usize>>; 3] = Default::default();
+        let mut levels: [HashMap<String, Vec<usize>>; 3] = Default::default();
         for (i, (label, reading)) in names.labels.iter().zip(&names.readings).enumerate() {
             let keys = [Some(label.key()), Some(reading.key.clone()), site_key(reading)];
             for (level, key) in levels.iter_mut().zip(keys) {
@@ -302,7 +301,7 @@ fn reference(names: &mut Names, rows: &[usize], maps: &Maps, wishes: &Wishes) ->
 
 /// No electrode and no site may have two rows of values.
 fn refuse_duplicates(placed: &[Placed], maps: &Maps, names: &Names) -> Result<(), Error> {
-    let mut seen: BTreeMap<String, usize> = BTreeMap::new();
+    let mut seen: HashMap<String, usize> = HashMap::new();
     for electrode in placed {
         let site = names.readings.get(electrode.row).and_then(site_key).map(|key| format!("site {key}"));
         for key in site.into_iter().chain([format!("label {}", electrode.label.key())]) {

@@ -10,7 +10,7 @@ use crate::electrode::{Electrode, Label, Landmark, Reading};
 use crate::finding::{Choice, Code, Error, Finding, Place};
 use crate::head::{AxesName, HEAD_RADII_MM, LengthUnit, STANDARD_RADIUS_MM, Sphere, SphereFit, spread};
 use crate::map::Maps;
-use crate::math::Vec3;
+use crate::math::{Vec3, sort_by_number};
 use frame::{Frame, find_axes, recognise_unit};
 use labels::{Matched, approximate, match_labels};
 
@@ -263,7 +263,7 @@ fn refuse_flat(points: &[Vec3]) -> Result<(), Error> {
 /// The electrode whose distance from the median position differs most from the median distance.
 fn farthest(electrodes: &[Placed]) -> Option<&Placed> {
     let median = |mut values: Vec<f64>| {
-        values.sort_by(f64::total_cmp);
+        sort_by_number(&mut values, |value| *value);
         values.get(values.len() / 2).copied().unwrap_or(0.0)
     };
     let middle = Vec3([0, 1, 2].map(|axis| median(electrodes.iter().map(|e| e.position_mm[axis]).collect())));

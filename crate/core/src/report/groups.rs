@@ -8,7 +8,7 @@ use crate::electrode::nearest_site;
 use crate::finding::{Code, Error, Finding, Place};
 use crate::math::{Ellipsoid, Symmetric3, Vec3, mean};
 use serde::{Deserialize, Serialize};
-use std::collections::BTreeSet;
+use std::collections::HashSet;
 
 /// Most dipoles that are grouped: time grows with their square.
 const MOST_DIPOLES: usize = 5000;
@@ -146,12 +146,12 @@ impl Groups {
             Some(subject) if !subject.is_empty() => (Some(subject), 0),
             _ => (None, index),
         };
-        let people = request.members.iter().enumerate().map(|(index, _)| person(index)).collect::<BTreeSet<_>>();
+        let people = request.members.iter().enumerate().map(|(index, _)| person(index)).collect::<HashSet<_>>();
         let groups: Vec<Group> = (0..grouping.count)
             .map(|group| {
                 let own = dipoles.iter().zip(&grouping.groups).filter(|(_, of)| **of == group).map(|(one, _)| one);
                 let own: Vec<&Placed> = own.collect();
-                let subjects = own.iter().map(|dipole| person(dipole.at[0])).collect::<BTreeSet<_>>().len();
+                let subjects = own.iter().map(|dipole| person(dipole.at[0])).collect::<HashSet<_>>().len();
                 Group::new(group + 1, &own, subjects, people.len())
             })
             .collect();

@@ -324,7 +324,10 @@ impl From<&Finding> for Note {
             severity: if is_warning(finding.code) { "warning" } else { "info" },
             message: message(finding),
             place: finding.place.clone(),
-            values: finding.values.iter().cloned().collect(),
+            values: finding.values.iter().cloned().fold(BTreeMap::new(), |mut values, (name, value)| {
+                values.insert(name, value);
+                values
+            }),
         }
     }
 }

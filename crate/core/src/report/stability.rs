@@ -2,6 +2,7 @@
 
 use super::EquivalentDipole;
 use super::number::{millimetres, percent, tenths};
+use crate::math::sort_by_number;
 use serde::Serialize;
 
 /// The fit without one electrode.
@@ -111,7 +112,7 @@ impl Influence {
     /// In words; `rv` is that of the fit.
     pub fn new(found: &[InfluenceReport], rv: f64) -> Self {
         let mut order: Vec<&InfluenceReport> = found.iter().collect();
-        order.sort_by(|a, b| b.shift_mm.total_cmp(&a.shift_mm));
+        sort_by_number(&mut order, |one| -one.shift_mm);
         let carries = |one: &InfluenceReport| one.shift_mm >= CARRIES_MM;
         let count = order.iter().filter(|one| carries(one)).count();
         let named: Vec<String> = order

@@ -6,7 +6,7 @@ use super::number::{given, percent, tenths};
 use crate::assess::Sample;
 use crate::electrode::Label;
 use crate::finding::{Code, Error, Finding};
-use crate::math::{Resampler, mean};
+use crate::math::{Resampler, mean, sort_by_number};
 use serde::{Deserialize, Serialize};
 
 /// Fewest subjects that an interval is computed from.
@@ -345,7 +345,7 @@ impl Group<'_> {
 fn curve(at: &[f64]) -> Vec<f64> {
     let low = (0..40).map(|k| libm::exp10(f64::from(k) / 20.0 - 3.0));
     let mut rv: Vec<f64> = low.chain((8..=80).map(|k| f64::from(k) / 80.0)).chain(at.iter().copied()).collect();
-    rv.sort_by(f64::total_cmp);
+    sort_by_number(&mut rv, |rv| *rv);
     rv.dedup();
     rv
 }

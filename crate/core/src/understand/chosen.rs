@@ -9,6 +9,7 @@ use super::{
 };
 use crate::electrode::{Electrode, Kind as LabelKind, Label, Reading as LabelReading};
 use crate::finding::{Choice, Code, Error, Finding, Origin, Place};
+use crate::math::sort_by_number;
 use crate::read::{MOST_ELECTRODES, Record};
 use std::collections::{HashMap, HashSet};
 
@@ -215,7 +216,7 @@ impl Chosen {
             None => {
                 // Positions that were replaced.
                 maps_columns.passed_over.extend(&beside);
-                maps_columns.passed_over.sort_unstable();
+                sort_by_number(&mut maps_columns.passed_over, |column| *column as f64);
                 columns.push((self.maps, maps_columns));
             }
         }

@@ -3,12 +3,13 @@ use super::positions::is_axis_name;
 use super::role::is_head;
 use crate::electrode::{Kind, Label, Reading};
 use crate::finding::{Error, Origin, Place};
+use crate::math::sort_by_number;
 use crate::read::{
     Body, Cells, Part, expect_number, has_decimal_comma, is_label_name, is_missing, number, number_with_comma,
 };
 use core::ops::Range;
 use ndarray::ArrayView2;
-use std::collections::HashMap;
+use std::collections::{HashMap, HashSet};
 
 /// Rows that are looked at to find words.
 const SAMPLE: usize = 64;
@@ -300,7 +301,7 @@ impl<'a> Grid<'a> {
     pub fn numbered(&self) -> Option<usize> {
         let mut numbers: Vec<f64> = (0..self.height()).map_while(|row| self.number(row, 0)).collect();
         let all = numbers.len() == self.height() && self.width() > 1 && self.words().is_none();
-        numbers.sort_by(f64::total_cmp);
+        sort_by_number(&mut numbers, |number| *number);
         let first = numbers.first().copied().filter(|first| *first == 0.0 || *first == 1.0)?;
         let counts = numbers.iter().enumerate().all(|(index, number)| *number == first + index as f64);
         (all && counts && numbers.len() > 2).then_some(0)
@@ -322,9 +323,7 @@ impl<'a> Grid<'a> {
         let most = counts.iter().copied().max().filter(|&most| most > 0)?;
         let mut best = None;
         for column in (0..columns).filter(|&column| counts.get(column) == Some(&most)) {
-            let mut words: Vec<&str> = (0..rows).map(|row| self.word(row, column)).collect();
-            words.sort_unstable();
-            words.dedup();
+            let words: HashSet<&str> = (0..rows).map(|row| self.word(row, column)).collect();
             if best.is_none_or(|(_, different)| words.len() > different) {
                 best = Some((column, words.len()));
             }

@@ -1,6 +1,6 @@
 use crate::forward::Images;
 use crate::math::lanes::splat3;
-use crate::math::{Lanes, Single, Vec3};
+use crate::math::{Lanes, Single, Vec3, order};
 
 /// Positions over the whole region of sources with the maps that a dipole at each can make.
 #[derive(Clone, Debug)]
@@ -97,8 +97,7 @@ impl Grid {
     /// first.
     pub(super) fn peaks(&self, explained: &Explained) -> Vec<Vec3> {
         let shares: Vec<f32> = explained.iter().flat_map(|shares| shares.to_array()).take(self.points.len()).collect();
-        let mut order: Vec<usize> = (0..shares.len()).collect();
-        order.sort_by(|a, b| shares[*b].total_cmp(&shares[*a]));
+        let order = order(shares.len(), &|a, b| shares[b].total_cmp(&shares[a]));
         let apart = SEPARATION * self.step;
         let at = |rank: usize| self.points[order[rank]];
         let is_peak = |rank: &usize| (0..*rank).all(|better| (at(better) - at(*rank)).norm() > apart);

@@ -1,4 +1,4 @@
-use super::{Vec3, dot, normal_above};
+use super::{Vec3, dot, normal_above, sort_by_number};
 
 /// Moran's I of the residuals of a regression: whether neighbours are left over alike.
 ///
@@ -67,7 +67,7 @@ pub fn neighbours(points: &[Vec3], nearest: usize) -> Vec<[usize; 2]> {
             .filter(|(j, _)| *j != i)
             .map(|(j, other)| ((*other - *point).norm(), j))
             .collect();
-        others.sort_by(|a, b| a.0.total_cmp(&b.0));
+        sort_by_number(&mut others, |other| other.0);
         pairs.extend(others.iter().take(nearest).map(|&(_, j)| [i.min(j), i.max(j)]));
     }
     pairs.into_iter().collect()

@@ -1,5 +1,7 @@
 //! Points that lie together.
 
+use super::sort_by_number;
+
 /// Ward's hierarchy (Ward 1963, J Am Stat Assoc 58:236–244): points are joined step by step, so that each step adds least to
 /// the sum of squared distances from the means.
 ///
@@ -64,7 +66,7 @@ impl Hierarchy {
             }
             steps.push((least, end, other));
         }
-        steps.sort_by(|a, b| a.0.total_cmp(&b.0));
+        sort_by_number(&mut steps, |step| step.0);
         Self { count: points.len(), steps: steps.into_iter().map(|(_, a, b)| (a, b)).collect() }
     }
 

@@ -87,7 +87,12 @@ impl Symmetric3 {
             }
         }
         let mut order = [0, 1, 2];
-        order.sort_by(|&i, &j| a[i][i].total_cmp(&a[j][j]));
+        for (left, right) in [(0, 1), (1, 2), (0, 1)] {
+            let [i, j] = [order[left], order[right]];
+            if a[i][i].total_cmp(&a[j][j]).is_gt() {
+                order.swap(left, right);
+            }
+        }
         Eigen { values: order.map(|i| a[i][i] * scale), vectors: order.map(|i| Vec3::new(v[0][i], v[1][i], v[2][i])) }
     }
 }

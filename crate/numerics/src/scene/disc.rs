@@ -1,4 +1,4 @@
-use crate::math::Vec3;
+use crate::math::{Vec3, sort_by_number};
 
 /// The head seen from above as a flat disc: azimuthal equidistant, so that the distance from the middle is the angle from
 /// the top of the head. x points right, y to the front, the rim has radius 1.
@@ -57,7 +57,8 @@ fn angle(direction: Vec3) -> f64 {
 /// The convex hull of points, counter-clockwise (monotone chain; Andrew 1979, Inf Process Lett 9:216–219).
 pub fn hull(points: &[DiscPoint]) -> Vec<DiscPoint> {
     let mut sorted = points.to_vec();
-    sorted.sort_by(|a, b| a[0].total_cmp(&b[0]).then(a[1].total_cmp(&b[1])));
+    sort_by_number(&mut sorted, |point| point[1]);
+    sort_by_number(&mut sorted, |point| point[0]);
     let chain = |points: &mut dyn Iterator<Item = &DiscPoint>| {
         let mut chain: Vec<DiscPoint> = Vec::new();
         for &point in points {
