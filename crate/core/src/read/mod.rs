@@ -4,6 +4,7 @@
 
 mod bytes;
 mod content;
+mod decimal;
 mod json;
 pub mod mat;
 pub mod npy;

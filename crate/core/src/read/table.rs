@@ -1,4 +1,5 @@
 use super::content::Cells;
+use super::decimal::decimal;
 use super::{MOST_MAPS, SIZES};
 use crate::finding::{Code, Error, Finding, Origin, Place};
 use std::borrow::Cow;
@@ -135,9 +136,7 @@ pub fn number(field: &str) -> Option<f64> {
     if let Some(rest) = field.strip_prefix('\u{2212}') {
         return number(rest).filter(|_| rest.starts_with(|c: char| c == '.' || c.is_ascii_digit())).map(|value| -value);
     }
-    // `parse` also takes words such as "inf" and "nan".
-    let plain = field.bytes().all(|b| matches!(b, b'0'..=b'9' | b'+' | b'-' | b'.' | b'e' | b'E'));
-    if plain { field.parse().ok() } else { None }
+    decimal(field)
 }
 
 /// The same with a decimal comma.
