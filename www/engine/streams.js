@@ -13,14 +13,16 @@ const VARIABLES = 3;
 const READ = 4;
 const WRITTEN = 5;
 const OFFSETS = 6;
-const I32 = 7;
-const I64 = 8;
-const CALLS = 9;
-const BRANCHES = 10;
-const TABLES = 11;
-const BYTES = 12;
-const BLOCKS = 13;
-const OTHER = 14;
+const I64 = 7;
+const CALLS = 8;
+const BRANCHES = 9;
+const TABLES = 10;
+const BYTES = 11;
+const BLOCKS = 12;
+const OTHER = 13;
+/** Constants of 32 bits before each opcode. */
+const I32 = 14;
+const COUNT = I32 + 256;
 /** Base-2 logarithms of the bytes that 0x28 to 0x3e load or store, and what has the prefix 0xfd: 0 to 11, 84 to 93. */
 const NATURAL = "23230011001122232301012";
 const NATURAL_WIDE = "433333301234";
@@ -30,10 +32,10 @@ const ALONE = [0x23, 0x24, 0x25, 0x26, 0x3f, 0x40, 0xd0, 0xd2];
 
 /** @param {Uint8Array<ArrayBuffer>} bytes lengths of the module and of each stream, and the streams */
 export function putTogether(bytes) {
-  const [size, ...lengths] = new Uint32Array(bytes.buffer, 0, OTHER + 2);
+  const [size, ...lengths] = new Uint32Array(bytes.buffer, 0, COUNT + 1);
   const out = new Uint8Array(size);
   let to = 0;
-  let end = 4 * (OTHER + 2);
+  let end = 4 * (COUNT + 1);
   const places = lengths.map((length) => (end += length) - length);
 
   /** @param {number} stream @param {number} count */
@@ -90,7 +92,7 @@ export function putTogether(bytes) {
     if (opcode === 0x20) local(READ);
     else if (opcode === 0x21 || opcode === 0x22) local(WRITTEN);
     else if (opcode >= 0x28 && opcode <= 0x3e) memory(NATURAL, opcode - 0x28);
-    else if (opcode === 0x41) number(I32);
+    else if (opcode === 0x41) number(I32 + bytes[places[OPCODES]]);
     else if (opcode === 0x42) number(I64);
     else if (opcode === 0x43 || opcode === 0x44) copy(BYTES, opcode === 0x43 ? 4 : 8);
     else if (opcode === 0x10) number(CALLS);

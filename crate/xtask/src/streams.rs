@@ -2,12 +2,13 @@
 //!
 //! Opcodes, offsets in memory, constants, called functions and so on are each foretold by their own kind. A local is
 //! told by its rank among those used last in the function; sizes of functions follow from their content, and alignments,
-//! which are hints, from the instruction. `www/engine/streams.js` puts the module together again (numbers of opcodes and
+//! which are hints, from the instruction. Constants of 32 bits have a stream for each opcode that may follow, since that tells
+//! what they are: a place on the stack, a length, a place of a text. `www/engine/streams.js` puts the module together again (numbers of opcodes and
 //! their operands: WebAssembly specification 2.0, §5.4).
 
 use anyhow::{Context, Result, bail};
 
-const COUNT: usize = 15;
+const COUNT: usize = 14 + 256;
 const HEAD: usize = 0;
 const TAIL: usize = 1;
 const OPCODES: usize = 2;
@@ -15,14 +16,15 @@ const VARIABLES: usize = 3;
 const READ: usize = 4;
 const WRITTEN: usize = 5;
 const OFFSETS: usize = 6;
-const I32: usize = 7;
-const I64: usize = 8;
-const CALLS: usize = 9;
-const BRANCHES: usize = 10;
-const TABLES: usize = 11;
-const BYTES: usize = 12;
-const BLOCKS: usize = 13;
-const OTHER: usize = 14;
+const I64: usize = 7;
+const CALLS: usize = 8;
+const BRANCHES: usize = 9;
+const TABLES: usize = 10;
+const BYTES: usize = 11;
+const BLOCKS: usize = 12;
+const OTHER: usize = 13;
+/// And the opcode that follows.
+const I32: usize = 14;
 
 /// Base-2 logarithms of the bytes that the instructions 0x28 to 0x3e load or store.
 const NATURAL: &[u8; 23] = b"23230011001122232301012";
@@ -32,7 +34,7 @@ const NATURAL_WIDE: [&[u8]; 2] = [b"433333301234", b"0123012323"];
 /// Lengths of the module and of each stream, four bytes each, the lowest first, and the streams; and the module with
 /// natural alignments, which is what is put together from them.
 pub fn taken_apart(module: &[u8]) -> Result<(Vec<u8>, Vec<u8>)> {
-    let mut apart = Apart { module: module.to_vec(), at: 8, streams: Default::default() };
+    let mut apart = Apart { module: module.to_vec(), at: 8, streams: vec![Vec::new(); COUNT] };
     while apart.module.get(apart.at) != Some(&10) {
         apart.at += 1;
         let size = apart.number()?.0;
@@ -62,7 +64,7 @@ pub fn taken_apart(module: &[u8]) -> Result<(Vec<u8>, Vec<u8>)> {
 struct Apart {
     module: Vec<u8>,
     at: usize,
-    streams: [Vec<u8>; COUNT],
+    streams: Vec<Vec<u8>>,
 }
 
 impl Apart {
@@ -148,7 +150,11 @@ impl Apart {
                 0x21 | 0x22 => self.local(WRITTEN, &mut recent)?,
                 0x23..=0x26 | 0x3f | 0x40 | 0xd0 | 0xd2 => self.others(1)?,
                 0x28..=0x3e => self.memory(NATURAL[usize::from(opcode) - 0x28])?,
-                0x41 => drop(self.keep(I32)?),
+                0x41 => {
+                    let (_, from) = self.number()?;
+                    let next = self.module.get(self.at).context("the module ends early")?;
+                    self.streams[I32 + usize::from(*next)].extend(&self.module[from..self.at]);
+                }
                 0x42 => drop(self.keep(I64)?),
                 0x43 => self.bytes(4)?,
                 0x44 => self.bytes(8)?,
@@ -183,8 +189,8 @@ impl Apart {
 mod tests {
     use super::*;
 
-    /// The names of the streams in the sample.
-    const NAMES: [&str; COUNT] = [
+    /// The names of the streams in the sample, but for those of constants, which bear the number of an opcode.
+    const NAMES: [&str; I32] = [
         "head",
         "tail",
         "opcodes",
@@ -192,7 +198,6 @@ mod tests {
         "read",
         "written",
         "offsets",
-        "i32",
         "i64",
         "calls",
         "branches",
@@ -214,7 +219,9 @@ mod tests {
             let [name, inside, apart] = line.split('\t').collect::<Vec<_>>()[..] else { panic!("{line}") };
             module.extend(hex(inside));
             if name != "-" {
-                streams[NAMES.iter().position(|one| *one == name).unwrap()].extend(hex(apart));
+                let constant = || I32 + usize::from_str_radix(name.strip_prefix("i32 ").unwrap(), 16).unwrap();
+                let stream = NAMES.iter().position(|one| *one == name).unwrap_or_else(constant);
+                streams[stream].extend(hex(apart));
             }
         }
         let (bytes, natural) = taken_apart(&module).unwrap();
