@@ -100,8 +100,8 @@ test("noise of one kind stays when a field of the other is emptied", () => {
 
 test("a report says what it is without", () => {
   assert.equal(reportLacksText({ regions: null, populations: false }), "");
-  assert.match(reportLacksText({ regions: 1000, populations: false }), /^The report has regions for tables of up to 1,000 maps/);
-  assert.match(reportLacksText({ regions: 1000, populations: true }), /verdicts once .* drawn\. It has regions/);
+  assert.match(reportLacksText({ regions: 1000, populations: false }), /^The report has regions and electrodes to check for tables of up to 1,000 maps/);
+  assert.match(reportLacksText({ regions: 1000, populations: true }), /verdicts once .* drawn\. It has regions and/);
 });
 
 test("the limits and defaults of the fields are the engine's", async () => {

@@ -1,7 +1,10 @@
 /**
- * What is told of the chosen map beyond its trust: other explanations when they are asked for, what carries the fit and what
- * would move it when nothing else is to be done, residual variance over the brain while it is looked at, the dipole by hand.
+ * What is told of the chosen map beyond its trust: other explanations when they are asked for; what carries the fit, what
+ * would move it and residual variance over the brain while their panels are open; the dipole by hand. Of the whole table,
+ * electrodes to check, when nothing else is to be done.
  */
+
+import { MOST_REGIONS } from "../engine/kinds.js";
 
 /** @import { Pool } from "../engine/pool/pool.js" */
 /** @import { Fitting } from "./fitting.js" */
@@ -140,7 +143,7 @@ export function makeExplanations(store, pool, fail, fitting, given) {
     if (idling || engine === null || !answer?.trust || phase === "busy" || arriving) return;
     if (!fitting.isAtRest()) return lookLater();
     const { key, count, fitted } = answer;
-    if (store.read().suspects?.key === key || count < 2 || fitted < count) return;
+    if (store.read().suspects?.key === key || count > MOST_REGIONS || fitted < count) return;
     idling = true;
     try {
       /** @type {Suspects | null} */

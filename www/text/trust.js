@@ -160,7 +160,7 @@ export function drawnText({ done, total }, left) {
 export function reportLacksText({ regions, populations }) {
   const lines = [
     populations ? "The report has reference populations and verdicts once all reference maps are drawn." : "",
-    regions === null ? "" : `It has regions for tables of up to ${regions.toLocaleString("en-GB")} maps only; this one has more.`,
+    regions === null ? "" : `It has regions and electrodes to check for tables of up to ${regions.toLocaleString("en-GB")} maps only; this one has more.`,
   ];
   return lines.filter((line) => line !== "").join(" ").replace(/^It has/, "The report has");
 }
