@@ -39,6 +39,28 @@ fn draw_nothing(page: &Page) {
     page.click("#draw-stop");
 }
 
+/// The panel of this name in the dark, on a narrow page and on paper.
+fn in_all_surroundings(page: &Page, panel: &str) {
+    let plain = Surroundings::default();
+    for (name, surroundings) in [
+        ("dark", Surroundings { dark: true, ..plain }),
+        ("narrow", Surroundings { zoom: 4, ..plain }),
+        ("print", Surroundings { print: true, ..plain }),
+    ] {
+        page.surround(surroundings);
+        page.settle();
+        if name == "dark" {
+            assert_eq!(page.accessibility_findings(), Vec::<String>::new());
+        }
+        if name != "print" {
+            assert_eq!(page.overhang(), json!(0), "{name}");
+        }
+        page.value(&format!("document.querySelector('#{panel}-sentence').scrollIntoView()"));
+        page.picture(&format!("{panel}-{name}"));
+    }
+    page.surround(plain);
+}
+
 /// A press of a key beside Control and the tabulator, by its number in the WebDriver standard.
 fn key(code: u32) -> String {
     char::from_u32(code).unwrap().to_string()
@@ -106,24 +128,7 @@ fn a_response_is_chosen_in_time(browser: Browser) {
     fixed(native.instants[0].index + 1, 13);
     assert_eq!(page.accessibility_findings(), Vec::<String>::new());
     page.picture("response");
-    for (name, surroundings) in [
-        ("dark", Surroundings { dark: true, ..Surroundings::default() }),
-        ("narrow", Surroundings { zoom: 4, ..Surroundings::default() }),
-    ] {
-        page.surround(surroundings);
-        page.settle();
-        if name == "dark" {
-            assert_eq!(page.accessibility_findings(), Vec::<String>::new());
-        }
-        assert_eq!(page.overhang(), json!(0), "{name}");
-        page.value("document.querySelector('#response-figure').scrollIntoView()");
-        page.picture(&format!("response-{name}"));
-    }
-    page.surround(Surroundings { print: true, ..Surroundings::default() });
-    page.settle();
-    page.value("document.querySelector('#response-sentence').scrollIntoView()");
-    page.picture("response-print");
-    page.surround(Surroundings::default());
+    in_all_surroundings(&page, "response");
     let figure = page.download("#response-tools [data-figure=svg]", "inward-response.svg");
     for part in ["global field power", "mid-rise", "one position", "seen from above"] {
         assert!(figure.contains(part), "{part}");
@@ -181,11 +186,11 @@ fn grouped(recordings: &[(String, String)], groups: Option<usize>) -> Groups {
             let radius = study.head().radius_mm;
             let dipoles: Vec<Value> = (0..study.count())
                 .filter_map(|map| {
-                    let fit = serde_json::to_value(study.fit(map).unwrap()).unwrap();
-                    let rv = fit["residual_variance"].as_f64().unwrap();
-                    let mm = fit["dipole"]["canonical_mm"].as_array().unwrap();
+                    let found = serde_json::to_value(study.fit(map).unwrap()).unwrap();
+                    let rv = found["residual_variance"].as_f64().unwrap();
+                    let mm = found["dipole"]["canonical_mm"].as_array().unwrap();
                     let position: Vec<f64> = mm.iter().map(|part| part.as_f64().unwrap() / radius).collect();
-                    let direction = &fit["dipole"]["canonical_direction"];
+                    let direction = &found["dipole"]["canonical_direction"];
                     (rv <= 0.1).then(|| json!({ "map": map, "position": position, "direction": direction, "rv": rv }))
                 })
                 .collect();
@@ -252,24 +257,7 @@ fn dipoles_of_several_people_are_grouped(browser: Browser) {
         page.text("#subject").starts_with(member.split(" · ").next().unwrap())
             && page.text("#subject").contains("sub-03")
     });
-    for (name, surroundings) in [
-        ("dark", Surroundings { dark: true, ..Surroundings::default() }),
-        ("narrow", Surroundings { zoom: 4, ..Surroundings::default() }),
-    ] {
-        page.surround(surroundings);
-        page.settle();
-        if name == "dark" {
-            assert_eq!(page.accessibility_findings(), Vec::<String>::new());
-        }
-        assert_eq!(page.overhang(), json!(0), "{name}");
-        page.value("document.querySelector('#groups-sentence').scrollIntoView()");
-        page.picture(&format!("groups-{name}"));
-    }
-    page.surround(Surroundings { print: true, ..Surroundings::default() });
-    page.settle();
-    page.value("document.querySelector('#groups-sentence').scrollIntoView()");
-    page.picture("groups-print");
-    page.surround(Surroundings::default());
+    in_all_surroundings(&page, "groups");
 }
 
 /// Components are no response.
