@@ -6,7 +6,8 @@ use crate::math::Vec3;
 use crate::report::{FittedMap, Landscape, Probe, Slice, slice_words};
 use crate::scene::contours;
 
-/// Rows and columns of a slice: two millimetres and a half from one to the next.
+/// Rows and columns of a slice: two millimetres and a half from one to the next. Values stand in the middle of their squares,
+/// as contour lines and pictures have it.
 const SIZE: usize = 65;
 
 /// Share of simulated maps whose true place lies within the first level.
@@ -27,7 +28,7 @@ impl Study {
         let brain = self.shells.brain_ratio();
         let lines: Vec<f64> = levels.iter().map(|level| level.rv).collect();
         let slices = VIEWS.map(|(view, (across, sign), up, along)| {
-            let place = |step: usize| brain * (2.0 * step as f64 / (SIZE - 1) as f64 - 1.0);
+            let place = |step: usize| brain * ((2 * step + 1) as f64 / SIZE as f64 - 1.0);
             let positions = (0..SIZE * SIZE).map(|pixel| {
                 let mut position = [0.0; 3];
                 position[across] = sign * place(pixel % SIZE);
@@ -40,9 +41,11 @@ impl Study {
             let least = inside.clone().fold(f64::INFINITY, |least, rv| least.min(*rv));
             let count = inside.clone().count().max(1);
             let within = inside.filter(|rv| **rv <= lines[0]).count();
+            let mut contours = contours(&rv, SIZE, &lines);
+            contours.iter_mut().flat_map(|line| line.points.iter_mut().flatten()).for_each(|part| *part *= brain);
             Slice {
                 view,
-                contours: contours(&rv, SIZE, &lines),
+                contours,
                 alt: slice_words(view, within as f64 / count as f64, least),
                 rv: rv.into_iter().map(|rv| rv as f32).collect(),
             }

@@ -33,7 +33,7 @@ pub struct Slice {
     pub view: &'static str,
     /// Residual variance of the best dipole at each place; not a number outside the region of sources.
     pub rv: Vec<f32>,
-    /// Lines of equal residual variance, in the unit of the square.
+    /// Lines of equal residual variance: to the right and up in the view.
     pub contours: Vec<Contour>,
     /// In words.
     pub alt: String,
@@ -108,7 +108,11 @@ impl Probe {
     pub fn new(map: &FittedMap, best: &FittedMap, at: Vec3) -> Self {
         let dipole = &map.dipole;
         let away = (dipole.canonical_mm - best.dipole.canonical_mm).norm();
-        let angle = dipole.canonical_direction.dot(best.dipole.canonical_direction).abs().min(1.0);
+        let cosine = dipole.canonical_direction.dot(best.dipole.canonical_direction).clamp(-1.0, 1.0);
+        let (direction, cosine, meaning) = match dipole.polarity {
+            Polarity::Arbitrary => ("Axis against the best", cosine.abs(), "Angle between the two axes, without sign."),
+            Polarity::Declared => ("Direction against the best", cosine, "Angle between the two moments."),
+        };
         Self {
             at,
             direction: dipole.canonical_direction,
@@ -137,14 +141,10 @@ impl Probe {
                 ),
                 row(
                     "direction_deg",
-                    if dipole.polarity == Polarity::Arbitrary {
-                        "Axis against the best"
-                    } else {
-                        "Direction against the best"
-                    },
-                    format!("{}°", millimetres(libm::acos(angle).to_degrees())),
+                    direction,
+                    format!("{}°", millimetres(libm::acos(cosine).to_degrees())),
                     "",
-                    "Angle between the two moments, without sign.",
+                    meaning,
                 ),
                 row(
                     "strength",

@@ -11,8 +11,7 @@ const STARTS: usize = 12;
 
 impl Fitter {
     /// The best minimum of a map that lies apart from its fit, by the distance that starts keep from each other at least.
-    /// `None` if none of the grid's twelve best peaks leads to
-    /// one.
+    /// `None` if none of the grid's twelve best peaks leads to one.
     pub fn second(&self, map: &[f64], fit: &Fit) -> Option<Fit> {
         let (map, size) = normalise(map)?;
         let region = Region { reach: self.field.reach(), step: self.grid.step() };
@@ -44,7 +43,8 @@ impl Fitter {
         let Some((map, _)) = normalise(map) else { return positions.map(|_| f64::NAN).collect() };
         let mut surface = Objective::new(self.field.field(), &map);
         let reach = self.field.reach();
-        let inside = |position: &Vec3| position.norm() <= reach;
+        // A place that was moved onto the boundary is beyond it by rounding.
+        let inside = |position: &Vec3| position.norm() <= reach * (1.0 + 1e-12);
         let mut value = |position| surface.value(position).map(|(left, _)| left);
         positions.map(|position| Some(position).filter(inside).and_then(&mut value).unwrap_or(f64::NAN)).collect()
     }
