@@ -63,6 +63,13 @@ impl Simulated {
         let (own, others) = (&study.settings, &other.settings);
         let same = study.population_key() == other.population_key();
         let drawn = |settings: &Settings| (settings.errors.draws, settings.errors.seed);
+        // Beside what populations rest on: displacements have the seed and are in mm, and it matters what was fitted and which
+        // shell is the fluid.
+        let varied = |study: &Study| {
+            let head = study.head();
+            (study.settings.errors.seed, head.radius_mm, head.centre_is_fitted && head.radius_is_fitted, head.shells)
+        };
+        let same_variations = same && varied(study) == varied(other);
         let kept = &other.simulated;
         Self {
             refits: if same && drawn(own) == drawn(others) { Arc::clone(&kept.refits) } else { Arc::default() },
@@ -71,7 +78,7 @@ impl Simulated {
             neighbours: if same { Arc::clone(&kept.neighbours) } else { Arc::default() },
             spacing_deg: if same { Arc::clone(&kept.spacing_deg) } else { Arc::default() },
             pairs: if same { Arc::clone(&kept.pairs) } else { Arc::default() },
-            variations: if same { Arc::clone(&kept.variations) } else { Arc::default() },
+            variations: if same_variations { Arc::clone(&kept.variations) } else { Arc::default() },
             // Made for the key.
             errors: study.simulated.errors.clone(),
         }
