@@ -262,11 +262,11 @@ fn slices_are_as_evaluated_directly() {
                 "left" => Vec3::new(landscape.at[0], -u, v),
                 view => panic!("{view}"),
             };
-            let step = 2.0 * brain / (size - 1) as f64;
+            let at_step = |step: usize| brain * ((2 * step + 1) as f64 / size as f64 - 1.0);
             let mut seen = 0;
             for _ in 0..60 {
                 let (row, column) = (draw.below(size), draw.below(size));
-                let p = in_space(column as f64 * step - brain, brain - row as f64 * step);
+                let p = in_space(at_step(column), -at_step(row));
                 let value = f64::from(slice.rv[row * size + column]);
                 assert_eq!(value.is_nan(), p.norm() > 0.98 * BRAIN, "{p:?}: {value}");
                 if !value.is_nan() {
@@ -279,13 +279,9 @@ fn slices_are_as_evaluated_directly() {
                 let level = contour.level;
                 assert!(landscape.levels.iter().any(|one| one.rv == level));
                 for point in contour.points.iter().step_by(5) {
-                    let value = at(in_space(brain * point[0], brain * point[1]));
+                    let value = at(in_space(point[0], point[1]));
                     // Straight between the places of a grid of two millimetres and a half.
-                    assert!(
-                        (value - level).abs() < 0.25 * level + 0.01,
-                        "{}: {value} on the line of {level}",
-                        slice.view
-                    );
+                    assert!((value - level).abs() < 0.1 * level, "{}: {value} on the line of {level}", slice.view);
                 }
             }
         }
@@ -301,6 +297,18 @@ fn slices_are_as_evaluated_directly() {
             by_hand.residual.iter().map(|v| v * v).sum::<f64>() / map.measured.iter().map(|v| v * v).sum::<f64>();
         assert!((left - probe.rv).abs() < 1e-9, "{left} and {}", probe.rv);
     }
+    // A direction has a sign where the map's has one.
+    let best = map.dipole.canonical_direction;
+    let turned = |p: &Vec3| study.probe(0, &map, *p).unwrap().0.direction.dot(best) < -0.1;
+    let back = (0..1000).map(|_| source(draw)).find(turned).expect("a place where the moment turns back");
+    let angle_at = |study: &Study| {
+        let probe = study.probe(0, &assessed(study, 0, &[]), back).unwrap().0;
+        let row = probe.rows.iter().find(|row| row.code == "direction_deg").unwrap();
+        row.value.trim_end_matches('°').parse::<f64>().unwrap()
+    };
+    let declared = self::study(&electrodes, &[values.clone()], json!({ "polarity": "declared" }));
+    assert!(angle_at(&study) < 90.0 && angle_at(&declared) > 90.0);
+    assert!((angle_at(&study) + angle_at(&declared) - 180.0).abs() <= 1.0);
     let (outside, _) = study.probe(0, &map, Vec3::new(0.0, 0.0, 3.0)).unwrap();
     assert!((outside.at.norm() - 0.98 * BRAIN).abs() < 1e-9);
 }
@@ -327,15 +335,68 @@ fn leaving_out_is_as_excluding() {
             let without = study(&electrodes, &maps, json!({ "exclude": [one.label] }));
             let full = assessed(&without, index, &[]);
             let shift = (full.dipole.canonical_mm - map.dipole.canonical_mm).norm();
+            let (Some(shift_without), Some(rv_without)) = (one.shift_mm, one.rv_without) else { panic!("{one:?}") };
             // Minima are followed from the best two: noise alone may have a third.
-            if full.residual_variance < one.rv_without - 1e-6 {
+            if full.residual_variance < rv_without - 1e-6 {
                 elsewhere += 1;
                 continue;
             }
-            assert!((full.residual_variance - one.rv_without).abs() < 1e-6, "{one:?}: {}", full.residual_variance);
-            assert!((shift - one.shift_mm).abs() < 0.1, "{one:?}: {shift}");
+            assert!((full.residual_variance - rv_without).abs() < 1e-6, "{one:?}: {}", full.residual_variance);
+            assert!((shift - shift_without).abs() < 0.1, "{one:?}: {shift}");
         }
         assert!(elsewhere <= 3 * index, "map {index}: {elsewhere}");
+    }
+}
+
+/// A map that one channel makes alone: without that channel there is none, which is not the same as that it carries nothing.
+#[test]
+fn the_only_channel_of_a_map_carries_it() {
+    let electrodes = Electrodes::set(19);
+    let map: Vec<f64> = electrodes.labels.iter().map(|label| if label == "C3" { 5.0 } else { 1.0 }).collect();
+    let study = study(&electrodes, &[map], json!({}));
+    let map = assessed(&study, 0, &[Assessment::Influence]);
+    for one in map.influence.as_ref().unwrap() {
+        assert_eq!((one.shift_mm.is_none(), one.rv_without.is_none()), (one.label == "C3", one.label == "C3"));
+    }
+    let told = study.influence(0, &map).unwrap();
+    let first = &told.electrodes[0];
+    assert!(first.label == "C3" && first.carries && first.shift.is_empty() && first.shift_mm >= 5.0, "{first:?}");
+    assert!(told.sentence.starts_with("This map is one of C3 alone"), "{}", told.sentence);
+}
+
+/// What is kept for a study under other settings is what would be made anew.
+#[test]
+fn other_heads_follow_the_settings() {
+    let electrodes = Electrodes::set(32);
+    let maps = [Draw::from(12).noise(32)];
+    let first = study(&electrodes, &maps, json!({}));
+    let what_if = |study: &Study| assessed(study, 0, &[Assessment::WhatIf]).what_if.unwrap();
+    let before = what_if(&first);
+    for settings in
+        [json!({ "errors": { "seed": 2 } }), json!({ "head": { "radius_mm": 88.0 }, "errors": { "sphere": 0.0 } })]
+    {
+        let anew = study(&electrodes, &maps, settings.clone());
+        let kept = first.with(serde_json::from_value(settings.clone()).unwrap());
+        let Ok(kept) = kept else { panic!("{settings}") };
+        assert_eq!(what_if(&kept), what_if(&anew), "{settings}");
+    }
+    let again = first.with(serde_json::from_value(json!({ "errors": { "seed": 2 } })).unwrap());
+    assert_ne!(what_if(&again.ok().unwrap()), before, "displacements have the seed of the errors");
+}
+
+/// Slices through the top of the region of sources hold at least their middle.
+#[test]
+fn slices_at_the_boundary_have_a_value() {
+    let electrodes = Electrodes::set(19);
+    let study = study(&electrodes, &[Draw::from(5).noise(19)], json!({}));
+    let map = assessed(&study, 0, &[]);
+    for axis in 0..3 {
+        for far in [-7.3, -5.0, -1.1, 0.87, 1.3, 2.9, 3.7, 6.1] {
+            let at = Vec3([0, 1, 2].map(|other| if other == axis { far } else { 0.0 }));
+            for slice in study.landscape(0, &map, Some(at)).unwrap().slices {
+                assert!(slice.rv.iter().any(|rv| !rv.is_nan()), "{at:?}, {}: {}", slice.view, slice.alt);
+            }
+        }
     }
 }
 

@@ -78,9 +78,8 @@ impl Study {
             let there = LocalFitter::new(field).fit(&rest, &starts);
             InfluenceReport {
                 label: electrode.label.to_string(),
-                // Without it the map may be the same everywhere: then nothing is left to be moved, or to be explained.
-                shift_mm: there.as_ref().map_or(0.0, |there| (there.position - fit.position).norm() * radius),
-                rv_without: there.map_or(0.0, |there| there.residual_variance),
+                shift_mm: there.as_ref().map(|there| (there.position - fit.position).norm() * radius),
+                rv_without: there.map(|there| there.residual_variance),
             }
         };
         Some(self.placement.used().enumerate().map(without).collect())

@@ -10,10 +10,10 @@ use serde::Serialize;
 pub struct InfluenceReport {
     /// The electrode.
     pub label: String,
-    /// How far the equivalent position moves.
-    pub shift_mm: f64,
-    /// Residual variance at the others.
-    pub rv_without: f64,
+    /// How far the equivalent position moves; absent where the map is the same at all others, so that none is left to fit.
+    pub shift_mm: Option<f64>,
+    /// Residual variance at the others; absent likewise.
+    pub rv_without: Option<f64>,
 }
 
 /// An electrode that holds strikingly much of what fits leave over.
@@ -91,11 +91,11 @@ pub struct Influence {
 pub struct InfluenceWords {
     /// The electrode.
     pub label: String,
-    /// Shift in mm.
+    /// Shift in mm; empty where nothing is left to fit.
     pub shift: String,
-    /// Residual variance without it, in percent.
+    /// Residual variance without it, in percent; empty likewise.
     pub rv: String,
-    /// For drawings.
+    /// For drawings: where nothing is left to fit, as much as of any other.
     pub shift_mm: f64,
     /// Whether the fit hangs on it.
     pub carries: bool,
@@ -112,21 +112,28 @@ impl Influence {
     /// In words; `rv` is that of the fit.
     pub fn new(found: &[InfluenceReport], rv: f64) -> Self {
         let mut order: Vec<&InfluenceReport> = found.iter().collect();
-        sort_by_number(&mut order, |one| -one.shift_mm);
-        let carries = |one: &InfluenceReport| one.shift_mm >= CARRIES_MM;
+        // What leaves no map moves the fit farther than anything.
+        let far = |one: &InfluenceReport| one.shift_mm.unwrap_or(f64::INFINITY);
+        sort_by_number(&mut order, |one| -far(one));
+        let carries = |one: &InfluenceReport| far(one) >= CARRIES_MM;
         let count = order.iter().filter(|one| carries(one)).count();
         let named: Vec<String> = order
             .iter()
             .take(count.min(NAMED))
-            .map(|one| format!("{} ({} mm)", one.label, millimetres(one.shift_mm)))
+            .map(|one| format!("{} ({} mm)", one.label, millimetres(far(one))))
             .collect();
-        let farthest = order.first().map_or(0.0, |one| one.shift_mm);
-        let moves = match count {
-            0 => format!(
+        let farthest = found.iter().filter_map(|one| one.shift_mm).fold(0.0, f64::max);
+        let alone = order.first().filter(|one| one.shift_mm.is_none());
+        let moves = match (alone, count) {
+            (Some(alone), _) => format!(
+                "This map is one of {} alone: at all other electrodes it is the same, and without it nothing is left to fit.",
+                alone.label
+            ),
+            (_, 0) => format!(
                 "No single electrode carries this fit: without any of them the position moves by at most {} mm.",
                 tenths(farthest)
             ),
-            n if n > NAMED => format!(
+            (_, n) if n > NAMED => format!(
                 "The fit hangs on single electrodes: {n} move it by at least {} mm when left out, most of all {}.",
                 millimetres(CARRIES_MM),
                 named.join(", ")
@@ -137,21 +144,21 @@ impl Influence {
                 named.join(", ")
             ),
         };
-        let best = found.iter().reduce(|a, b| if b.rv_without < a.rv_without { b } else { a });
-        let left = match best.filter(|best| best.rv_without <= 0.5 * rv && rv > 1e-6) {
-            Some(best) => format!(
-                " Most of what is left over is at {}: without it {} % instead of {} %.",
-                best.label,
-                percent(best.rv_without),
+        let left = found.iter().filter_map(|one| Some((&one.label, one.rv_without?)));
+        let best = left.reduce(|a, b| if b.1 < a.1 { b } else { a });
+        let left = match best.filter(|(_, without)| alone.is_none() && *without <= 0.5 * rv && rv > 1e-6) {
+            Some((label, without)) => format!(
+                " Most of what is left over is at {label}: without it {} % instead of {} %.",
+                percent(without),
                 percent(rv)
             ),
             None => String::new(),
         };
         let words = |one: &&InfluenceReport| InfluenceWords {
             label: one.label.clone(),
-            shift: tenths(one.shift_mm),
-            rv: percent(one.rv_without),
-            shift_mm: one.shift_mm,
+            shift: one.shift_mm.map_or_else(String::new, tenths),
+            rv: one.rv_without.map_or_else(String::new, percent),
+            shift_mm: one.shift_mm.unwrap_or(farthest.max(CARRIES_MM)),
             carries: carries(one),
         };
         Self {
