@@ -391,7 +391,7 @@ fn slices_at_the_boundary_have_a_value() {
     let study = study(&electrodes, &[Draw::from(5).noise(19)], json!({}));
     let map = assessed(&study, 0, &[]);
     for axis in 0..3 {
-        for far in [-7.3, -5.0, -1.1, 0.87, 1.3, 2.9, 3.7, 6.1] {
+        for far in [-5.0, 1.34, 1.39, 1.51] {
             let at = Vec3([0, 1, 2].map(|other| if other == axis { far } else { 0.0 }));
             for slice in study.landscape(0, &map, Some(at)).unwrap().slices {
                 assert!(slice.rv.iter().any(|rv| !rv.is_nan()), "{at:?}, {}: {}", slice.view, slice.alt);
