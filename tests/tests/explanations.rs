@@ -106,7 +106,7 @@ fn a_planted_mirrored_pair_is_found_and_preferred() {
             let verdict = map.verdict.unwrap();
             let word = serde_json::to_value(verdict.word).unwrap();
             paired += usize::from(word == "paired");
-            assert_eq!(word == "paired", found.iter().any(|one| one.decision == Decision::Preferred), "{verdict:?}");
+            assert_eq!(word == "paired", pair.decision == Decision::Preferred, "{verdict:?}");
         }
     }
     println!("of {planted} mirrored pairs {preferred} are preferred, {paired} called paired");

@@ -32,7 +32,7 @@ fn assert_harmless(page: &Page, context: &str) {
          const found = [];\
          if (window.bad !== undefined) found.push('a script ran');\
          for (const e of all) {\
-           if (!(e.matches('svg[role=img]') && e.parentElement.matches('.drawing')) && !(e.matches('svg.swatch') && e.parentElement.matches('label[data-marks]')) && !e.matches('svg.verdict-mark') && e.matches('img, svg, iframe, b, u, style, object, embed, #template-of-the-file')) found.push(e.outerHTML.slice(0, 80));\
+           if (!(e.matches('svg[role=img]') && e.parentElement.matches('.drawing')) && !(e.matches('svg.swatch') && e.parentElement.matches('[data-marks]')) && !e.matches('svg.verdict-mark') && e.matches('img, svg, iframe, b, u, style, object, embed, #template-of-the-file')) found.push(e.outerHTML.slice(0, 80));\
            for (const { name, value } of e.attributes) {\
              if (name.startsWith('on') || (name !== 'data-file' && strange.test(value))) found.push(`${name}=${value.slice(0, 80)}`);\
            }\

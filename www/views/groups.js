@@ -89,7 +89,7 @@ export function showGroups(session) {
     }),
     (at) => {
       const { id, index } = dipoles[at];
-      if (id >= 0) open(id, index);
+      if (id >= 0) openMap(id, index);
     },
   );
   const legendContent = () => ({
@@ -106,7 +106,7 @@ export function showGroups(session) {
   });
 
   /** @param {number} id @param {number} index */
-  async function open(id, index) {
+  async function openMap(id, index) {
     await session.openDecomposition(id);
     await session.choose(index);
     need("sentence", HTMLElement).focus();
@@ -176,7 +176,7 @@ export function showGroups(session) {
       part.addEventListener("toggle", () => part.childElementCount > 1 || part.append(...own.slice(0, MOST_LISTED).map(([member, one]) => {
         const { id, index, row } = dipoleOf(member, one);
         const button = make("button", memberText(row, members[member].decomposition), { type: "button", class: "quiet" });
-        button.addEventListener("click", () => open(id, index));
+        button.addEventListener("click", () => openMap(id, index));
         return button;
       })));
       return part;
