@@ -69,7 +69,8 @@ pub struct WhatIfReport {
     /// How far the equivalent position moves: with electrodes misplaced, root mean square; absent where the change does not
     /// apply.
     pub shift_mm: Option<f64>,
-    /// Depth under the inner skull of that head less that under the model's, positive when deeper; with electrodes misplaced, root mean square.
+    /// Depth under the inner skull of that head less that under the model's, positive when deeper; with electrodes misplaced,
+    /// root mean square.
     pub depth_mm: Option<f64>,
     /// Residual variance; with electrodes misplaced, the mean.
     pub rv: Option<f64>,
