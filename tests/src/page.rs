@@ -1,7 +1,7 @@
 //! The page in a browser, by what a person can do with it.
 use crate::bitmap::Bitmap;
 use crate::browser::Browser;
-use crate::place::{dist_file, screenshot_file};
+use crate::place::{dist_file, example, screenshot_file};
 use crate::session::{CONTROL, Element, Session, TAB};
 use crate::surroundings::Surroundings;
 use crate::{Outcome, tests_folder};
@@ -32,6 +32,17 @@ impl Page {
     pub fn open(browser: Browser) -> Self {
         let page = Self::load(browser, &dist_file("inward.html"));
         page.wait_for("ready").unwrap_or_else(|why| panic!("{}: {why}", browser.name()));
+        page
+    }
+
+    /// Opens the page and gives it the invented maps of the watch.
+    pub fn with_watch(browser: Browser) -> Self {
+        let page = Self::open(browser);
+        page.drop_files(&[
+            DroppedFile { name: "electrodes.tsv", text: &example("watch_electrodes.tsv") },
+            DroppedFile { name: "maps.tsv", text: &example("watch_maps.tsv") },
+        ]);
+        page.until("an answer", Self::rests);
         page
     }
 

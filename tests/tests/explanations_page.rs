@@ -1,5 +1,5 @@
-//! Other explanations, influence, other heads and residual variance over the brain, on the page and by the keyboard: what is shown is
-//! what the engine finds natively.
+//! Other explanations, influence, other heads and residual variance over the brain, on the page and by the keyboard: what is
+//! shown is what the engine finds natively.
 use inward_core::{Request, analyse};
 use inward_tests::{Browser, Draw, DroppedFile, Page, Surroundings, example, in_both_browsers};
 use serde_json::{Value, json};
@@ -21,12 +21,7 @@ const PLAIN: Surroundings =
 
 /// The watch with its two horns in view.
 fn two_horns(browser: Browser) -> Page {
-    let page = Page::open(browser);
-    page.drop_files(&[
-        DroppedFile { name: "electrodes.tsv", text: &example("watch_electrodes.tsv") },
-        DroppedFile { name: "maps.tsv", text: &example("watch_maps.tsv") },
-    ]);
-    page.until("an answer", Page::rests);
+    let page = Page::with_watch(browser);
     page.value("document.querySelector('#trust-settings').open = true");
     page.fill("#set-sources-draws", &DRAWS.to_string());
     page.value("document.querySelector('#trust-settings').open = false");

@@ -171,6 +171,13 @@ fn a_planted_source_is_found_as_fixed_and_as_moving() {
         (one.rv[0].unwrap() - fit[6]).abs() < 1e-12 && (one.position - Vec3::new(fit[0], fit[1], fit[2])).norm() < 1e-6
     );
     assert!(study.fixed(3, 41).is_err());
+    // Strengths are those of the fits, also where time points have a size of their own.
+    let mut sizes = vec![Value::Null; 41];
+    sizes[22] = json!(3.0);
+    let sized = study.with(serde_json::from_value(json!({ "mapUnit": "uV", "activationSd": sizes })).unwrap()).unwrap();
+    let [x, y, z] = [3, 4, 5].map(|part| sized.fits(22..23).unwrap()[0][part]);
+    let strength = sized.fixed(22, 22).unwrap().unwrap().strength[0];
+    assert!((strength / x.hypot(y).hypot(z) - 1.0).abs() < 1e-6 && (strength / one.strength[0] - 3.0).abs() < 1e-9);
     let moved = scenario(0.02, true);
     let study = open(&table(&moved.electrodes.labels, &moved.times, &moved.maps), json!({ "mapUnit": "uV" }));
     let course = study.response().unwrap();

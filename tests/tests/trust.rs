@@ -1,6 +1,6 @@
 //! How far to trust a fit, on the page: verdicts, region and reference populations are those that the engine finds natively.
 use inward_core::{Request, analyse};
-use inward_tests::{Browser, DroppedFile, Node, Page, example, in_both_browsers};
+use inward_tests::{Browser, Node, Page, example, in_both_browsers};
 use serde_json::{Value, json};
 
 #[test]
@@ -16,12 +16,7 @@ const DRAWS: usize = 1000;
 
 /// The watch with all verdicts told.
 fn judged(browser: Browser) -> Page {
-    let page = Page::open(browser);
-    page.drop_files(&[
-        DroppedFile { name: "electrodes.tsv", text: &example("watch_electrodes.tsv") },
-        DroppedFile { name: "maps.tsv", text: &example("watch_maps.tsv") },
-    ]);
-    page.until("an answer", Page::rests);
+    let page = Page::with_watch(browser);
     page.value("document.querySelector('#trust-settings').open = true");
     page.fill("#set-sources-draws", "20");
     assert_eq!(page.attribute("#set-sources-draws", "aria-invalid"), "true", "too few are not taken");

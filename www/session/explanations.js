@@ -58,8 +58,7 @@ export function makeExplanations(store, pool, fail, fitting, given) {
   /** @type {Set<ToldPanel>} */
   const open = new Set();
   let looking = false;
-  /** Where the slices and the dipole are wanted: null at the best fit. */
-  /** @type {number[] | null} */
+  /** Where the slices and the dipole are wanted: null at the best fit. @type {number[] | null} */
   let wanted = null;
   /** What was answered last. @type {{ hand: number[] | null, slices: number[] | null | undefined }} */
   let shown = { hand: null, slices: undefined };

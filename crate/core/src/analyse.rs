@@ -293,7 +293,7 @@ impl Study {
         self.check(&range)?;
         Ok(self.batches(range, |index, _, fit| {
             let Some(fit) = fit else { return [f64::NAN; 8] };
-            let size = self.settings.map_unit.microvolts() * self.settings.activation_sd(index).unwrap_or(1.0);
+            let size = self.strength_factor(index);
             let ([x, y, z], [mx, my, mz]) = (fit.position.0, (fit.moment * (self.sign(index) * size)).0);
             let stopped = match fit.stopped {
                 Stopped::Converged => 0.0,
@@ -537,6 +537,11 @@ impl Study {
             influence: None,
             what_if: None,
         }
+    }
+
+    /// What a moment is multiplied by to be a strength as reports have it.
+    fn strength_factor(&self, index: usize) -> f64 {
+        self.settings.map_unit.microvolts() * self.settings.activation_sd(index).unwrap_or(1.0)
     }
 
     fn equivalent_dipole(&self, found: &Fit, moment: Vec3, activation_sd: Option<f64>) -> EquivalentDipole {

@@ -2,9 +2,9 @@
 //!
 //! Opcodes, offsets in memory, constants, called functions and so on are each foretold by their own kind. A local is
 //! told by its rank among those used last in the function; sizes of functions follow from their content, and alignments,
-//! which are hints, from the instruction. Constants of 32 bits have a stream for each opcode that may follow, since that tells
-//! what they are: a place on the stack, a length, a place of a text. `www/engine/streams.js` puts the module together again (numbers of opcodes and
-//! their operands: WebAssembly specification 2.0, §5.4).
+//! which are hints, from the instruction. Constants of 32 bits have a stream for each opcode that may follow, since that
+//! tells what they are: a place on the stack, a length, a place of a text. `www/engine/streams.js` puts the module together
+//! again (numbers of opcodes and their operands: WebAssembly specification 2.0, §5.4).
 
 use anyhow::{Context, Result, bail};
 

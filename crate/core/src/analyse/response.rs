@@ -11,12 +11,10 @@ use crate::understand::ColumnsAre;
 impl Study {
     /// The response over time; `None` unless the maps are time points.
     pub fn response(&self) -> Option<Response> {
-        let unit = self.settings.map_unit;
         self.response_of(|| {
             self.batches(0..self.count(), |index, _, fit| {
                 let fit = fit?;
-                let size = unit.microvolts() * self.settings.activation_sd(index).unwrap_or(1.0);
-                Some((fit.position, fit.moment.norm() * size, fit.residual_variance))
+                Some((fit.position, fit.moment.norm() * self.strength_factor(index), fit.residual_variance))
             })
         })
     }
@@ -85,7 +83,6 @@ impl Study {
         let moving = self.fitter.fit_batch(&maps);
         let left = moving.iter().zip(&powers).filter_map(|(fit, power)| Some(fit.as_ref()?.residual_variance * power));
         let moving = left.sum::<f64>() / powers.iter().sum::<f64>();
-        let size = self.settings.map_unit.microvolts();
         let interval = match &understood.moments {
             Some(moments) => ([moments.times[range.start], moments.times[range.end - 1]], moments.unit),
             None => ([range.start as f64 + 1.0, range.end as f64], "samples"),
@@ -95,7 +92,7 @@ impl Study {
             interval,
             position: fit.position,
             rv: common.residual_variances,
-            strength: signed.into_iter().map(|one| sense * size * one).collect(),
+            strength: range.zip(signed).map(|(at, one)| sense * self.strength_factor(at) * one).collect(),
             along: common.moments.iter().map(|m| m.dot(axis) * m.dot(axis)).sum::<f64>() / all,
             moving,
         };

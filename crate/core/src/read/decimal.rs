@@ -9,25 +9,33 @@ const MOST_DIGITS: usize = 800;
 /// Digits with a point, a sign and an exponent or without; `None` for anything else.
 pub fn decimal(text: &str) -> Option<f64> {
     let (negative, text) = signed(text);
-    let (digits, exponent) = match text.split_once(['e', 'E']) {
-        Some((digits, exponent)) => (digits, whole(exponent)?),
-        None => (text, 0),
-    };
-    let (before, after) = digits.split_once('.').unwrap_or((digits, ""));
-    let mut all = before.bytes().chain(after.bytes());
-    if digits.len() < 1 + usize::from(digits.contains('.')) || !all.all(|digit| digit.is_ascii_digit()) {
-        return None;
+    // Digits from the first that is not 0 on, the number of as many as fit into it, and how many stand behind the point.
+    let (mut count, mut number, mut after) = (0, 0, 0);
+    let (mut some, mut point, mut end, mut exponent) = (false, false, text.len(), 0);
+    for (at, byte) in text.bytes().enumerate() {
+        match byte {
+            b'0'..=b'9' => {
+                let digit = u64::from(byte - b'0');
+                count += usize::from(count > 0 || digit > 0);
+                if count < 20 {
+                    number = 10 * number + digit;
+                }
+                after += i64::from(point);
+                some = true;
+            }
+            b'.' if !point => point = true,
+            b'e' | b'E' if some => {
+                (end, exponent) = (at, whole(text.get(at + 1..)?)?);
+                break;
+            }
+            _ => return None,
+        }
     }
-    let digits = || before.bytes().chain(after.bytes()).map(|digit| digit - b'0').skip_while(|digit| *digit == 0);
-    let scale = exponent - after.len() as i64;
-    let count = digits().count();
-    let value = if count < 20 {
-        let number = digits().fold(0, |number, digit| 10 * number + u64::from(digit));
-        quick(number, scale).unwrap_or_else(|| exact(digits(), count, scale))
-    } else {
-        exact(digits(), count, scale)
-    };
-    Some(if negative { -value } else { value })
+    let scale = exponent - after;
+    let digits = text.bytes().take(end).filter(u8::is_ascii_digit).map(|digit| digit - b'0').skip_while(|d| *d == 0);
+    let quickly = if count < 20 { quick(number, scale) } else { None };
+    let value = quickly.unwrap_or_else(|| exact(digits, count, scale));
+    some.then_some(if negative { -value } else { value })
 }
 
 fn signed(text: &str) -> (bool, &str) {
@@ -47,7 +55,7 @@ fn whole(text: &str) -> Option<i64> {
     Some(if negative { -size } else { size })
 }
 
-/// A whole number times a power of ten, where 64 bits suffice for it.
+/// A whole number times a power of ten, where 128 bits suffice for it.
 fn quick(number: u64, scale: i64) -> Option<f64> {
     if number == 0 {
         return Some(0.0);
@@ -57,19 +65,25 @@ fn quick(number: u64, scale: i64) -> Option<f64> {
         let power = (0..scale.abs()).fold(1.0, |power, _| 10.0 * power);
         return Some(if scale < 0 { number as f64 / power } else { number as f64 * power });
     }
-    if !(-27..0).contains(&scale) {
+    if !(-54..0).contains(&scale) {
         return None;
     }
-    let fives = (scale..0).fold(1_u64, |power, _| 5 * power);
+    let fives = (scale..0).fold(1_u128, |power, _| 5 * power);
     let zeros = number.leading_zeros();
-    let [mut quotient, mut rest] = [(number << zeros) / fives, (number << zeros) % fives];
-    // The power of five is below 2⁶³, so that no rest runs over; 55 bits are those of a double and two to round by.
+    let shifted = number << zeros;
+    let (mut quotient, mut rest) = match u64::try_from(fives) {
+        Ok(fives) => (shifted / fives, u128::from(shifted % fives)),
+        Err(_) => (0, u128::from(shifted)),
+    };
+    // The power of five is below 2¹²⁶, so that no rest runs over; 55 bits are those of a double and two to round by.
     let mut exponent = scale - i64::from(zeros);
     while quotient < 1 << 54 {
         rest *= 2;
-        let bit = u64::from(rest >= fives);
-        rest -= bit * fives;
-        quotient = 2 * quotient + bit;
+        quotient *= 2;
+        if rest >= fives {
+            rest -= fives;
+            quotient += 1;
+        }
         exponent -= 1;
     }
     Some(rounded(quotient, exponent, rest > 0))

@@ -324,6 +324,7 @@ impl From<&Finding> for Note {
             severity: if is_warning(finding.code) { "warning" } else { "info" },
             message: message(finding),
             place: finding.place.clone(),
+            // Collected, they would bring another copy of the library's sort.
             values: finding.values.iter().cloned().fold(BTreeMap::new(), |mut values, (name, value)| {
                 values.insert(name, value);
                 values

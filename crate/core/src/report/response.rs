@@ -173,6 +173,9 @@ impl Response {
         let mut notes = vec![
             "The moving dipole is a fit of each time point by itself. Where the field power is near the noise, residual variance and position mean nothing.".to_owned(),
         ];
+        if floor.is_some() {
+            notes.push("The onset is where the field power last rose above that level before the peak, the middle of the rise half way from there (common practice, no source).".into());
+        }
         if !known {
             notes.push("No times are known; time points are counted from 1.".into());
         }
