@@ -63,7 +63,7 @@ export function instantText({ times, unit, gfp, gfp_unit, rv, positions }, index
   const share = rv[index];
   if (share !== null) parts.push(`RV ${percentText(share)}`);
   const place = positions[index];
-  if (place !== null) parts.push(`x, y, z ${place.map((part) => (radius * part).toFixed(0)).join(", ")} mm`);
+  if (place !== null) parts.push(`x, y, z ${place.map((part) => Math.round(radius * part) || 0).join(", ")} mm`);
   if (quiet) parts.push(COURSE_WORDS["response.quiet"]);
   return typeset(parts.join(" · "));
 }
