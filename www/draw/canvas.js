@@ -1,10 +1,15 @@
-/** A canvas at the device's resolution, and the inks of its surroundings. */
+/** What painters draw on: a canvas at the device's resolution or a part of a drawing, and the inks around it. */
 
 /** @import { Theme } from "./scale.js" */
 
 /**
  * `wide` is how many CSS pixels across a picture is drawn; null where its place on the page tells.
  * @typedef {{ ink: string, paper: string, theme: Theme, font: string, ratio: number, wide: number | null }} Surroundings
+ */
+
+/**
+ * A pen and the width and height it has in CSS pixels; `SvgPen` takes as much of a canvas as the painters use.
+ * @typedef {{ pen: CanvasRenderingContext2D, width: number, height: number }} Surface
  */
 
 const PRINT_RATIO = 3;
@@ -52,20 +57,39 @@ export function surroundingsOf(place, printing) {
  * @param {HTMLCanvasElement} canvas
  * @param {Surroundings} around
  * @param {number} [least] the width that is needed
+ * @returns {Surface | null}
  */
 export function openCanvas(canvas, { ratio, wide }, least = 0) {
   const shrink = wide === null ? shrinkOf(canvas, least) : wide / Math.max(1, canvas.clientWidth);
   const width = canvas.clientWidth * shrink;
   const height = canvas.clientHeight * shrink;
+  return openBitmap(canvas, width, height, wide === null ? ratio / shrink : ratio);
+}
+
+/** A canvas that is drawn on before it has a place on the page. @param {HTMLCanvasElement} canvas @param {number} width @param {number} height @param {number} dense */
+export function openBitmap(canvas, width, height, dense) {
   const pen = canvas.getContext("2d");
   if (pen === null || width === 0 || height === 0) return null;
-  const dense = wide === null ? ratio / shrink : ratio;
   const [across, down] = [Math.round(width * dense), Math.round(height * dense)];
   // Giving a canvas the size it has is slow.
   if (canvas.width !== across || canvas.height !== down) Object.assign(canvas, { width: across, height: down });
   else pen.reset();
   pen.setTransform(across / width, 0, 0, down / height, 0, 0);
   return { pen, width, height };
+}
+
+/**
+ * A part of a drawing, with smaller pixels where it is narrower than what is drawn needs.
+ * @param {(x: number, y: number) => CanvasRenderingContext2D} penAt
+ * @param {{ x: number, y: number, width: number, height: number }} box
+ * @param {number} [least]
+ * @returns {Surface}
+ */
+export function surfaceAt(penAt, { x, y, width, height }, least = 0) {
+  const pen = penAt(x, y);
+  const shrink = Math.max(1, least / width);
+  if (shrink > 1) pen.scale(1 / shrink, 1 / shrink);
+  return { pen, width: width * shrink, height: height * shrink };
 }
 
 /** Drawn pixels in a CSS pixel. @param {HTMLCanvasElement} canvas @param {number} least */

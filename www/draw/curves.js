@@ -8,7 +8,7 @@ import { textWidth } from "./pen.js";
 import { seriesColour, seriesDash } from "./series.js";
 import { enteredText, NO_BREAK, percentText } from "../text/figures.js";
 
-/** @import { Surroundings } from "./canvas.js" */
+/** @import { Surface, Surroundings } from "./canvas.js" */
 
 /** CSS pixels around the plot. */
 const AROUND_PLOT = { left: 46, top: 40, right: 14, bottom: 42 };
@@ -108,13 +108,11 @@ export function layOutShares(width, height, { lines, logarithmic, most, behind =
 }
 
 /**
- * @param {CanvasRenderingContext2D} pen
- * @param {number} width
- * @param {number} height
+ * @param {Surface} surface
  * @param {SharesContent} content
  * @param {Surroundings} around
  */
-export function paintShares(pen, width, height, content, around) {
+export function paintShares({ pen, width, height }, content, around) {
   const { lines, logarithmic, most, threshold, pointed, words, behind = [], told } = content;
   const plot = layOutShares(width, height, content, around);
   const linear = most > 0.5 ? 0.2 : most > 0.3 ? 0.1 : 0.05;
@@ -399,13 +397,11 @@ const SHAPES = [
 ];
 
 /**
- * @param {CanvasRenderingContext2D} pen
- * @param {number} width
- * @param {number} height
+ * @param {Surface} surface
  * @param {{ points: { name: string, at: number, share: number, information: number }[], words: { x: string, y: string } }} content
  * @param {Surroundings} around
  */
-export function paintInformation(pen, width, height, { points, words }, around) {
+export function paintInformation({ pen, width, height }, { points, words }, around) {
   const plot = { left: 54, right: width - 16, top: 24, bottom: height - AROUND_PLOT.bottom };
   const { left, right, top, bottom } = plot;
   const values = points.map(({ information }) => information);

@@ -1,5 +1,6 @@
 /** Many dipoles in one head, and what their colours mean. */
 
+import { paintSteps } from "./bar.js";
 import { shrinkOf } from "./canvas.js";
 import { levelText, strokeLine } from "./curves.js";
 import { layOutHead, LEAST_WIDTH, paintCircles, paintPeg, paintShells, seenFrom } from "./head.js";
@@ -7,7 +8,7 @@ import { letterFont, writeHaloed } from "./marks.js";
 import { outlineOf, strokeOutline } from "./region.js";
 import { rvColour, RV_MOST, seriesColour, seriesDash } from "./series.js";
 
-/** @import { Surroundings } from "./canvas.js" */
+/** @import { Surface, Surroundings } from "./canvas.js" */
 /** @import { Side, Standpoint } from "./head.js" */
 
 /** Half of a dipole's line over the radius of the scalp. */
@@ -42,13 +43,11 @@ function dipoleColour({ rv, at }, byRv, { theme }) {
 }
 
 /**
- * @param {CanvasRenderingContext2D} pen
- * @param {number} width
- * @param {number} height
+ * @param {Surface} surface
  * @param {DipolesContent} content
  * @param {Surroundings} around
  */
-export function paintDipoles(pen, width, height, content, around) {
+export function paintDipoles({ pen, width, height }, content, around) {
   const { dipoles, chosen, byRv, letters } = content;
   const { middle, centre, radius } = layOutHead(width, height);
   const seen = seenFrom(content.from);
@@ -171,13 +170,8 @@ export function paintDipoleLegend(pen, width, { byRv, threshold, names, words },
     return y + 12;
   }
   const [left, right] = [6, Math.min(width - 6, 266)];
-  const step = (right - left) / LEGEND_STEPS;
   pen.fillText(words, left, 7, width - 12);
-  for (let k = 0; k < LEGEND_STEPS; k++) {
-    pen.fillStyle = rvColour((RV_MOST * (k + 0.5)) / LEGEND_STEPS, around.theme);
-    // Each reaches to the end, so that no seam is seen.
-    pen.fillRect(left + k * step, 18, right - left - k * step, 10);
-  }
+  paintSteps(pen, { x: left, y: 18, width: right - left, height: 10 }, (share) => rvColour(RV_MOST * share, around.theme), LEGEND_STEPS);
   pen.fillStyle = around.ink;
   pen.strokeStyle = around.ink;
   pen.lineWidth = 1.2;

@@ -3,11 +3,10 @@
  * that say how it is seen.
  */
 
-import { openCanvas } from "./canvas.js";
-import { letterFont, markDipole, markElectrode, markPointed, shortLabel, writeHaloed } from "./marks.js";
+import { letterFont, markDipole, markElectrodes, markPointed, shortLabel, writeHaloed } from "./marks.js";
 import { colourTable, lineColour } from "./scale.js";
 
-/** @import { Surroundings } from "./canvas.js" */
+/** @import { Surface, Surroundings } from "./canvas.js" */
 /** @import { Theme } from "./scale.js" */
 
 const TABLE_STEPS = 511;
@@ -107,14 +106,11 @@ function tracePoints(pen, points, closed) {
 }
 
 /**
- * @param {HTMLCanvasElement} canvas
+ * @param {Surface} surface
  * @param {DiscContent} content
  * @param {Surroundings} around
  */
-export function paintDisc(canvas, content, around) {
-  const opened = openCanvas(canvas, around);
-  if (opened === null) return;
-  const { pen, width, height } = opened;
+export function paintDisc({ pen, width, height }, content, around) {
   const { picture, role } = content;
   const place = layOutDisc(width, height, picture);
   const stretch = role === "residual" ? picture.stretch : 1;
@@ -191,10 +187,10 @@ function paintMarks(pen, width, { middle, centre, unit, edge }, content, around)
   const extremes = picture.extremes[role];
   const dipole = content.dipole ? picture.dipole : null;
   const labelled = new Set([extremes.max, extremes.min]);
-  picture.electrodes.forEach(({ x, y, used }, at) => {
-    const radius = labelled.has(at) ? 2.5 : 1.3;
-    markElectrode(pen, middle + unit * x, centre - unit * y, { used, radius }, around);
-  });
+  const marked = picture.electrodes.map(({ x, y, used }, at) => ({ x: middle + unit * x, y: centre - unit * y, used, labelled: labelled.has(at) }));
+  for (const [large, radius] of /** @type {const} */ ([[false, 1.3], [true, 2.5]])) {
+    markElectrodes(pen, marked.filter((one) => one.labelled === large), radius, around);
+  }
   if (dipole !== null) {
     const { axis, dipole: inHead } = content.figure;
     const moment = { dx: HALF_LINE * dipole.dx, dy: -HALF_LINE * dipole.dy, towards: inHead.direction[2], axis };
@@ -237,14 +233,11 @@ function paintMarks(pen, width, { middle, centre, unit, edge }, content, around)
 
 /**
  * One map by itself, without contour lines: its colours, the rim, and the signs of how it is seen.
- * @param {HTMLCanvasElement} canvas
+ * @param {Surface} surface
  * @param {{ raster: Float32Array, size: number, outline: Float32Array, sign: number, words: DiscContent["words"] }} content
  * @param {Surroundings} around
  */
-export function paintMapDisc(canvas, { raster, size, outline, sign, words }, around) {
-  const opened = openCanvas(canvas, around);
-  if (opened === null) return;
-  const { pen, width, height } = opened;
+export function paintMapDisc({ pen, width, height }, { raster, size, outline, sign, words }, around) {
   const reach = Math.max(1, Math.min(width, height) / 2 - DISC_MARGIN);
   const [middle, centre] = [width / 2, height / 2];
   pen.save();

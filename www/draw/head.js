@@ -3,11 +3,11 @@
  * outermost, and letters on pegs that turn with the head. What is nearer covers what is farther, which is fainter.
  */
 
-import { openCanvas, shrinkOf } from "./canvas.js";
+import { shrinkOf } from "./canvas.js";
 import { paintRegion } from "./region.js";
-import { letterFont, markDipole, markElectrode, markPointed, shortLabel, writeHaloed } from "./marks.js";
+import { letterFont, markDipole, markElectrodes, markPointed, shortLabel, writeHaloed } from "./marks.js";
 
-/** @import { Surroundings } from "./canvas.js" */
+/** @import { Surface, Surroundings } from "./canvas.js" */
 /** @import { RegionMarks } from "./region.js" */
 
 /** CSS pixels around the head for the letters. */
@@ -107,14 +107,11 @@ export function electrodeOnHead(canvas, { figure, from }, x, y, reach) {
 }
 
 /**
- * @param {HTMLCanvasElement} canvas
+ * @param {Surface} surface no narrower than `LEAST_WIDTH`
  * @param {HeadContent} content
  * @param {Surroundings} around
  */
-export function paintHead(canvas, content, around) {
-  const opened = openCanvas(canvas, around, LEAST_WIDTH);
-  if (opened === null) return;
-  const { pen, width, height } = opened;
+export function paintHead({ pen, width, height }, content, around) {
   const { figure, electrodes, pointed, letters } = content;
   const { middle, centre, radius } = layOutHead(width, height);
   const seen = seenFrom(content.from);
@@ -130,12 +127,9 @@ export function paintHead(canvas, content, around) {
   const paintSide = (/** @type {boolean} */ near) => {
     paintCircles(pen, place, near, around);
     for (const letter of letters) paintPeg(pen, place, radius, letter, near, width, around);
-    figure.electrodes.forEach((point, at) => {
-      const { x, y, z } = place(point);
-      if (z >= 0 !== near) return;
-      pen.globalAlpha = near ? 1 : FAR_ALPHA;
-      markElectrode(pen, x, y, { used: electrodes[at].used, radius: 1.6 }, around);
-    });
+    pen.globalAlpha = near ? 1 : FAR_ALPHA;
+    const placed = figure.electrodes.map((point, at) => ({ ...place(point), used: electrodes[at].used }));
+    markElectrodes(pen, placed.filter(({ z }) => z >= 0 === near), 1.6, around);
     pen.globalAlpha = 1;
   };
 

@@ -1,22 +1,20 @@
 /** What a fit hangs on: at each electrode a circle, its area the shift of the position without it. */
 
 import { layOutDisc, paintSides } from "./disc.js";
-import { letterFont, markElectrode, shortLabel, writeHaloed } from "./marks.js";
+import { letterFont, markElectrodes, shortLabel, writeHaloed } from "./marks.js";
 import { seriesColour } from "./series.js";
 
-/** @import { Surroundings } from "./canvas.js" */
+/** @import { Surface, Surroundings } from "./canvas.js" */
 /** @import { DiscContent } from "./disc.js" */
 
 const LARGEST_CIRCLE = 15;
 
 /**
- * @param {CanvasRenderingContext2D} pen
- * @param {number} width
- * @param {number} height
+ * @param {Surface} surface
  * @param {{ picture: Picture, influence: Influence, words: DiscContent["words"] }} content
  * @param {Surroundings} around
  */
-export function paintInfluence(pen, width, height, { picture, influence, words }, around) {
+export function paintInfluence({ pen, width, height }, { picture, influence, words }, around) {
   const { middle, centre, unit, edge } = layOutDisc(width, height, picture);
   const most = Math.max(1e-9, ...influence.electrodes.map(({ shift_mm }) => shift_mm));
   pen.font = letterFont(around);
@@ -44,7 +42,7 @@ export function paintInfluence(pen, width, height, { picture, influence, words }
     pen.globalAlpha = 1;
     if (carries) pen.stroke();
   }
-  for (const { x, y, used } of placed) markElectrode(pen, x, y, { used, radius: 1.5 }, around);
+  markElectrodes(pen, placed, 1.5, around);
   pen.fillStyle = around.ink;
   for (const { label, x, y, size, carries } of placed) if (carries) writeHaloed(pen, shortLabel(label), x, y - size - 7, width, around);
   paintSides(pen, middle, centre, unit * edge, words, around);

@@ -1,12 +1,13 @@
 /** Residual variance over the brain, in a slice through it: the darker (in the dark: lighter), the better a dipole fits there. */
 
-import { openCanvas, shrinkOf } from "./canvas.js";
+import { paintSteps } from "./bar.js";
+import { shrinkOf } from "./canvas.js";
 import { layOutHead, LEAST_WIDTH, paintPeg, paintShells, seenFrom } from "./head.js";
 import { letterFont, markDipole, writeHaloed } from "./marks.js";
 import { strokeOther } from "./region.js";
 import { cssColour, encodeLight, linearOfOklch } from "./scale.js";
 
-/** @import { Surroundings } from "./canvas.js" */
+/** @import { Surface, Surroundings } from "./canvas.js" */
 /** @import { Side, Standpoint } from "./head.js" */
 /** @import { Theme } from "./scale.js" */
 
@@ -67,14 +68,11 @@ function imageOfSlice(rv, size, least, theme) {
 }
 
 /**
- * @param {HTMLCanvasElement} canvas
+ * @param {Surface} surface no narrower than `LEAST_WIDTH`
  * @param {SliceContent} content
  * @param {Surroundings} around
  */
-export function paintSlice(canvas, { landscape, slice, figure, hand, felt, from, letters, seen }, around) {
-  const opened = openCanvas(canvas, around, LEAST_WIDTH);
-  if (opened === null) return;
-  const { pen, width, height } = opened;
+export function paintSlice({ pen, width, height }, { landscape, slice, figure, hand, felt, from, letters, seen }, around) {
   const { middle, centre, radius } = layOutHead(width, height);
   const turned = seenFrom(from);
   /** @param {number[]} point */
@@ -145,13 +143,7 @@ export function pointOnSlice(canvas, x, y) {
   return [(shrink * x - middle) / radius, (centre - shrink * y) / radius];
 }
 
-/** The colours from the best fit on. @param {HTMLCanvasElement} canvas @param {Surroundings} around */
-export function paintLandscapeBar(canvas, around) {
-  const opened = openCanvas(canvas, around);
-  if (opened === null) return;
-  const { pen, width, height } = opened;
-  for (let x = 0; x < width; x++) {
-    pen.fillStyle = cssColour(landscapeColour((x + 0.5) / width, around.theme));
-    pen.fillRect(x, 0, 1.5, height);
-  }
+/** The colours from the best fit on. @param {Surface} surface @param {Surroundings} around */
+export function paintLandscapeBar({ pen, width, height }, { theme }) {
+  paintSteps(pen, { x: 0, y: 0, width, height }, (share) => cssColour(landscapeColour(share, theme)));
 }

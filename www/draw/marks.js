@@ -42,6 +42,36 @@ export function writeHaloed(pen, text, x, y, width, around) {
 }
 
 /**
+ * Text in as many lines as its room asks for.
+ * @param {CanvasRenderingContext2D} pen
+ * @param {string} text
+ * @param {number} x
+ * @param {number} y of the first line
+ * @param {number} room
+ * @param {number} step from line to line
+ * @returns {number} how many lines
+ */
+export function writeWrapped(pen, text, x, y, room, step) {
+  const lines = [""];
+  for (const next of text.split(" ")) {
+    const longer = `${lines[lines.length - 1]} ${next}`.trim();
+    if (pen.measureText(longer).width <= room) lines[lines.length - 1] = longer;
+    else lines.push(next);
+  }
+  lines.forEach((line, at) => pen.fillText(line, x, y + step * at));
+  return lines.length;
+}
+
+/** Circles of one size as one path. @param {CanvasRenderingContext2D} pen @param {{ x: number, y: number }[]} places @param {number} radius */
+export function traceCircles(pen, places, radius) {
+  pen.beginPath();
+  for (const { x, y } of places) {
+    pen.moveTo(x + radius, y);
+    pen.arc(x, y, radius, 0, 2 * Math.PI);
+  }
+}
+
+/**
  * @param {CanvasRenderingContext2D} pen
  * @param {number} x
  * @param {number} y
@@ -53,32 +83,32 @@ function traceCircle(pen, x, y, radius) {
 }
 
 /**
- * A dot; crossed and hollow when the fit does without it.
+ * Dots; crossed and hollow where the fit does without. Those of one kind are one path.
  * @param {CanvasRenderingContext2D} pen
- * @param {number} x
- * @param {number} y
- * @param {{ used: boolean, radius: number }} electrode
+ * @param {{ x: number, y: number, used: boolean }[]} electrodes
+ * @param {number} radius
  * @param {Surroundings} around
  */
-export function markElectrode(pen, x, y, { used, radius }, around) {
-  pen.fillStyle = around.ink;
-  if (used) {
-    traceCircle(pen, x, y, radius);
+export function markElectrodes(pen, electrodes, radius, around) {
+  const [used, unused] = [true, false].map((one) => electrodes.filter((electrode) => electrode.used === one));
+  if (used.length > 0) {
+    pen.fillStyle = around.ink;
+    traceCircles(pen, used, radius);
     pen.fill();
-    return;
   }
+  if (unused.length === 0) return;
   const arm = 2.4;
   pen.fillStyle = around.paper;
   pen.strokeStyle = around.ink;
   pen.lineWidth = 1;
-  traceCircle(pen, x, y, 3.8);
+  traceCircles(pen, unused, 3.8);
   pen.fill();
-  pen.stroke();
-  pen.beginPath();
-  pen.moveTo(x - arm, y - arm);
-  pen.lineTo(x + arm, y + arm);
-  pen.moveTo(x + arm, y - arm);
-  pen.lineTo(x - arm, y + arm);
+  for (const { x, y } of unused) {
+    pen.moveTo(x - arm, y - arm);
+    pen.lineTo(x + arm, y + arm);
+    pen.moveTo(x + arm, y - arm);
+    pen.lineTo(x - arm, y + arm);
+  }
   pen.stroke();
 }
 

@@ -36,6 +36,11 @@ export function textWidth(text, font) {
   return ruler.measureText(text).width;
 }
 
+/** What a canvas saves and restores, as far as it is used here. */
+const PEN_STATE = /** @type {const} */ (["strokeStyle", "fillStyle", "lineWidth", "globalAlpha", "lineCap", "lineJoin", "font", "textAlign", "textBaseline"]);
+/** Circles up to this radius are dots. */
+const LARGEST_DOT = 3;
+
 export class SvgPen {
   strokeStyle = "black";
   fillStyle = "black";
@@ -49,14 +54,56 @@ export class SvgPen {
   /** @type {number[]} */
   #dash = [];
   #path = "";
+  /** The path as dots, as long as it has no more than circles of one radius. @type {{ radius: number, path: string } | null} */
+  #dots = null;
   /** A stroke around letters belongs to the letters that follow. @type {Attributes} */
   #halo = {};
   /** @type {Element} */
   #root;
+  /** Where the pen's own origin lies in the drawing, and how large its unit is there. */
+  #place = { x: 0, y: 0, unit: 1 };
+  /** @type {(() => void)[]} */
+  #saved = [];
+  #prefix;
 
-  /** @param {Element} root takes what is drawn */
-  constructor(root) {
+  /** @param {Element} root takes what is drawn @param {string} [prefix] of names within it, for drawings that share a page */
+  constructor(root, prefix = "") {
     this.#root = root;
+    this.#prefix = prefix;
+  }
+
+  save() {
+    const kept = Object.fromEntries(PEN_STATE.map((name) => [name, this[name]]));
+    const [root, place, dash] = [this.#root, this.#place, this.#dash];
+    this.#saved.push(() => {
+      Object.assign(this, kept);
+      [this.#root, this.#place, this.#dash] = [root, place, dash];
+    });
+  }
+  restore() {
+    this.#saved.pop()?.();
+  }
+  /** @param {number} x @param {number} y */
+  translate(x, y) {
+    this.#place = { ...this.#place, x: this.#x(x), y: this.#y(y) };
+  }
+  /** The same in both directions. @param {number} unit */
+  scale(unit) {
+    this.#place = { ...this.#place, unit: unit * this.#place.unit };
+  }
+  /** What follows, until it is restored, is seen within the path. */
+  clip() {
+    const name = `${this.#prefix}clip-${(this.#root.closest("svg")?.querySelectorAll("clipPath").length ?? 0) + 1}`;
+    const shape = svgElement("clipPath", { id: name });
+    shape.append(svgElement("path", { d: this.#path }));
+    const inside = svgElement("g", { "clip-path": `url(#${name})` });
+    this.#root.append(shape, inside);
+    this.#root = inside;
+  }
+  /** @param {HTMLCanvasElement} image @param {number} x @param {number} y @param {number} width @param {number} height */
+  drawImage(image, x, y, width, height) {
+    const href = image.toDataURL("image/png");
+    this.#add("image", { ...this.#box(x, y, width, height), href, preserveAspectRatio: "none" });
   }
 
   /** @param {number[]} dash */
@@ -65,29 +112,40 @@ export class SvgPen {
   }
   beginPath() {
     this.#path = "";
+    this.#dots = { radius: 0, path: "" };
   }
   /** @param {number} x @param {number} y */
   moveTo(x, y) {
-    this.#path += `M${rounded(x)} ${rounded(y)}`;
+    this.#path += `M${this.#point(x, y)}`;
   }
   /** @param {number} x @param {number} y */
   lineTo(x, y) {
-    this.#path += `${this.#path === "" ? "M" : "L"}${rounded(x)} ${rounded(y)}`;
+    this.#dots = null;
+    this.#path += `${this.#path === "" ? "M" : "L"}${this.#point(x, y)}`;
   }
   closePath() {
+    this.#dots = null;
     this.#path += "Z";
   }
   /** A whole circle. @param {number} x @param {number} y @param {number} radius */
   arc(x, y, radius) {
-    const r = rounded(radius);
-    this.#path += `M${rounded(x + radius)} ${rounded(y)}a${r} ${r} 0 1 1 ${-2 * r} 0a${r} ${r} 0 1 1 ${2 * r} 0Z`;
+    const r = this.#size(radius);
+    // A dot is a line of next to no length with round ends: a quarter of the letters.
+    const dots = this.#dots?.path ?? "";
+    this.#dots = dots === "" || this.#dots?.radius === radius ? { radius, path: `${dots}M${this.#point(x, y)}h.01` } : null;
+    const start = `M${this.#point(x + radius, y)}`;
+    this.#path += `${this.#path.endsWith(start) ? "" : start}a${r} ${r} 0 1 1 ${-2 * r} 0a${r} ${r} 0 1 1 ${2 * r} 0Z`;
   }
   /** @param {number} x @param {number} y @param {number} width @param {number} height */
   fillRect(x, y, width, height) {
-    const place = { x: rounded(x), y: rounded(y), width: rounded(width), height: rounded(height) };
-    this.#add("rect", { ...place, fill: this.fillStyle, ...this.#alpha() });
+    this.#add("rect", { ...this.#box(x, y, width, height), fill: this.fillStyle, ...this.#alpha() });
   }
   fill() {
+    const dots = this.#dots;
+    if (dots !== null && dots.path !== "" && this.#size(dots.radius) <= LARGEST_DOT) {
+      const line = { stroke: this.fillStyle, "stroke-width": this.#size(2 * dots.radius), "stroke-linecap": "round" };
+      return this.#add("path", { d: dots.path, fill: "none", ...line, ...this.#alpha() });
+    }
     this.#add("path", { d: this.#path, fill: this.fillStyle, ...this.#alpha() });
   }
   stroke() {
@@ -108,14 +166,14 @@ export class SvgPen {
     this.#add(
       "text",
       {
-        x: rounded(x),
-        y: rounded(y + down),
+        x: rounded(this.#x(x)),
+        y: rounded(this.#y(y + down)),
         fill: this.fillStyle,
         "font-family": family,
-        "font-size": size,
+        "font-size": this.#size(Number(size)),
         ...(weight === "" ? {} : { "font-weight": weight.trim() }),
         ...(anchors[this.textAlign] === undefined ? {} : { "text-anchor": anchors[this.textAlign] }),
-        ...(this.measureText(text).width > most ? { textLength: rounded(most), lengthAdjust: "spacingAndGlyphs" } : {}),
+        ...(this.measureText(text).width > most ? { textLength: this.#size(most), lengthAdjust: "spacingAndGlyphs" } : {}),
         ...this.#halo,
         ...this.#alpha(),
       },
@@ -124,12 +182,32 @@ export class SvgPen {
     this.#halo = {};
   }
 
+  /** @param {number} x */
+  #x(x) {
+    return this.#place.x + this.#place.unit * x;
+  }
+  /** @param {number} y */
+  #y(y) {
+    return this.#place.y + this.#place.unit * y;
+  }
+  /** @param {number} length */
+  #size(length) {
+    return rounded(this.#place.unit * length);
+  }
+  /** @param {number} x @param {number} y */
+  #point(x, y) {
+    return `${rounded(this.#x(x))} ${rounded(this.#y(y))}`;
+  }
+  /** @param {number} x @param {number} y @param {number} width @param {number} height @returns {Attributes} */
+  #box(x, y, width, height) {
+    return { x: rounded(this.#x(x)), y: rounded(this.#y(y)), width: this.#size(width), height: this.#size(height) };
+  }
   /** @returns {Attributes} */
   #line() {
     return {
       stroke: this.strokeStyle,
-      "stroke-width": rounded(this.lineWidth),
-      ...(this.#dash.length > 0 ? { "stroke-dasharray": this.#dash.join(" ") } : {}),
+      "stroke-width": this.#size(this.lineWidth),
+      ...(this.#dash.length > 0 ? { "stroke-dasharray": this.#dash.map((length) => this.#size(length)).join(" ") } : {}),
       ...(this.lineCap === "round" ? { "stroke-linecap": "round" } : {}),
       ...(this.lineJoin === "round" ? { "stroke-linejoin": "round" } : {}),
     };

@@ -1,5 +1,6 @@
 /** Where a dipole may lie as well: refitted positions and the outlines of ellipsoids, in a view of the head; marks of verdicts. */
 
+import { traceCircles } from "./marks.js";
 import { svgElement } from "./pen.js";
 import { seriesColour } from "./series.js";
 
@@ -109,12 +110,8 @@ export function paintRegion(pen, place, { cloud, errors, noise, repeats, others 
   const [colour, other] = [0, 1].map((at) => seriesColour(at, around.theme));
   pen.fillStyle = colour;
   pen.globalAlpha = 0.5;
-  for (const point of cloud) {
-    const { x, y } = place(point);
-    pen.beginPath();
-    pen.arc(x, y, 1.3, 0, 2 * Math.PI);
-    pen.fill();
-  }
+  traceCircles(pen, cloud.map(place), 1.3);
+  pen.fill();
   pen.globalAlpha = 1;
   if (errors !== null) strokeOutline(pen, outlineOf(errors, place), colour, [], around);
   if (noise !== null) strokeOutline(pen, outlineOf(noise, place), other, NOISE_DASH, around);

@@ -2,26 +2,19 @@
 
 import { imageOfRaster } from "./disc.js";
 
-/** @import { Surroundings } from "./canvas.js" */
+/** @import { Surface, Surroundings } from "./canvas.js" */
 
 /** CSS pixels around the disc, for the tick. */
 const MARGIN = 3.5;
 
 /**
- * @param {HTMLCanvasElement} canvas
- * @param {number} side of the canvas in CSS pixels
+ * @param {Surface} surface
  * @param {{ size: number, outline: Float32Array, raster: Float32Array } | null} map null while it is not there yet
  * @param {Surroundings} around
  */
-export function paintThumbnail(canvas, side, map, { ink, theme, ratio }) {
-  const dots = Math.round(side * ratio);
-  // Giving a canvas a size empties it.
-  Object.assign(canvas, { width: dots, height: dots });
-  const pen = canvas.getContext("2d");
-  if (pen === null) return;
-  const unit = side / 2 - MARGIN;
-  pen.scale(dots / side, dots / side);
-  pen.translate(side / 2, side / 2);
+export function paintThumbnail({ pen, width }, map, { ink, theme }) {
+  const unit = width / 2 - MARGIN;
+  pen.translate(width / 2, width / 2);
   if (map !== null) {
     pen.save();
     pen.beginPath();

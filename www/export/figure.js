@@ -26,11 +26,15 @@ export function emptyFigure(title, description) {
   return figure;
 }
 
-/** @param {SVGSVGElement} figure @param {number} width @param {number} height */
-export function sizeFigure(figure, width, height) {
-  for (const [name, value] of Object.entries({ width, height, viewBox: `0 0 ${width} ${height}` })) {
-    figure.setAttribute(name, String(value));
-  }
+/** @param {SVGSVGElement} figure @param {number} width as it is drawn @param {number} height @param {number} shown as wide as it is shown */
+export function sizeFigure(figure, width, height, shown) {
+  const [box, high] = [`0 0 ${round2(width)} ${round2(height)}`, round2((height * shown) / width)];
+  for (const [name, value] of Object.entries({ width: round2(shown), height: high, viewBox: box })) figure.setAttribute(name, String(value));
+}
+
+/** @param {number} value */
+function round2(value) {
+  return Math.round(100 * value) / 100;
 }
 
 /** @param {SVGSVGElement} figure */

@@ -154,8 +154,8 @@ export function showAllDipoles(session) {
     description: need("dipoles-count", HTMLElement).textContent ?? "",
     width: 3 * SAVED_VIEW,
     paint: (width, around, penAt) => {
-      three.save(around, penAt);
-      return SAVED_VIEW + 12 + paintDipoleLegend(penAt(0, SAVED_VIEW + 12), width, legendContent(), around);
+      const below = three.save(width, around, penAt) + 12;
+      return below + paintDipoleLegend(penAt(0, below), width, legendContent(), around);
     },
   }));
 

@@ -15,23 +15,30 @@ import { make } from "./element.js";
  */
 
 /**
- * @param {string} title
- * @param {string} description
- * @param {number} width
- * @param {Surroundings} around
- * @param {FigurePainter} paint
+ * A figure that can leave the page: what its file is called, what it is in words, and how wide it is drawn, in CSS pixels:
+ * where nobody says otherwise, and at least.
+ * @typedef {{ name: string, title: string, description: string, width: number, least?: number, paint: FigurePainter }} FigureParts
  */
-export function drawnFigure(title, description, width, around, paint) {
+
+/**
+ * A figure as SVG. One that is to be narrower than it can be drawn is drawn as narrow as it can be, and shown smaller.
+ * @param {FigureParts} parts
+ * @param {number} [width] in CSS pixels
+ * @param {{ around?: Surroundings, prefix?: string }} [options] `prefix` keeps names apart where several share a page
+ */
+export function drawFigure({ title, description, width: usual, least = 0, paint }, width = usual, { around = FOR_FILES, prefix = "" } = {}) {
   const figure = emptyFigure(title, description);
-  const paper = svgElement("rect", { width: "100%", height: "100%", fill: around.paper });
-  figure.append(paper);
-  const height = paint(width, around, (x, y) => {
-    const part = svgElement("g", x === 0 && y === 0 ? {} : { transform: `translate(${x} ${y})` });
+  figure.append(svgElement("rect", { width: "100%", height: "100%", fill: around.paper }));
+  const drawn = Math.max(least, width);
+  const height = paint(drawn, around, (x, y) => {
+    const part = svgElement("g", {});
     figure.append(part);
+    const pen = new SvgPen(part, prefix);
+    pen.translate(x, y);
     // The painters use no more of a canvas than the pen has.
-    return /** @type {any} */ (new SvgPen(part));
+    return /** @type {any} */ (pen);
   });
-  sizeFigure(figure, width, height);
+  sizeFigure(figure, drawn, height, width);
   return figure;
 }
 
@@ -45,7 +52,7 @@ export function drawnFigure(title, description, width, around, paint) {
 export function showFigure(place, name, printing, paint) {
   const width = printing ? 640 : place.clientWidth;
   if (width === 0) return;
-  const figure = drawnFigure("", "", width, surroundingsOf(place, printing), paint);
+  const figure = drawFigure({ name, title: "", description: "", width, paint }, width, { around: surroundingsOf(place, printing) });
   for (const part of ["title", "desc"]) figure.querySelector(part)?.remove();
   figure.setAttribute("aria-label", name);
   place.querySelector("svg")?.remove();
@@ -56,7 +63,7 @@ export function showFigure(place, name, printing, paint) {
  * Buttons that save a figure.
  * @param {Session} session
  * @param {HTMLElement} place
- * @param {() => { name: string, title: string, description: string, width: number, paint: FigurePainter } | null} ask
+ * @param {() => FigureParts | null | undefined} ask
  */
 export function figureTools(session, place, ask) {
   const sizes = /** @type {HTMLSelectElement} */ (make("select", "", { "aria-label": word("figure.size"), class: "figure-size" }));
@@ -67,8 +74,8 @@ export function figureTools(session, place, ask) {
     const element = make("button", word(bitmap ? "figure.png" : "figure.svg"), { type: "button", "data-figure": bitmap ? "png" : "svg" });
     element.addEventListener("click", async () => {
       const asked = ask();
-      if (asked === null) return;
-      const figure = drawnFigure(asked.title, asked.description, asked.width, FOR_FILES, asked.paint);
+      if (!asked) return;
+      const figure = drawFigure(asked);
       try {
         await saveFigure(figure, asked.name, bitmap ? Number(sizes.value) : null);
       } catch (error) {

@@ -1,6 +1,5 @@
 /** Dipoles of several recordings in one head, grouped by place and axis: whose they are, their spread, their mean maps. */
 
-import { surroundingsOf } from "../draw/canvas.js";
 import { paintDipoleLegend } from "../draw/dipoles.js";
 import { paintMapDisc } from "../draw/disc.js";
 import { copyText } from "../export/out.js";
@@ -13,7 +12,7 @@ import { make, need, rewrite } from "./element.js";
 import { figureTools, showFigure } from "./figure.js";
 import { keepTyped } from "./setting.js";
 import { fittedDecompositions, inOne } from "./several.js";
-import { keepPainted } from "./surface.js";
+import { keepPainted, paintOn } from "./surface.js";
 import { SAVED_VIEW, shellsOf, threeViews } from "./three_views.js";
 
 /** @import { Session } from "../session/session.js" */
@@ -149,7 +148,8 @@ export function showGroups(session) {
       const most = raster.reduce((most, value) => (Math.abs(value) > most ? Math.abs(value) : most), 1e-9);
       const canvas = /** @type {HTMLCanvasElement} */ (make("canvas", "", { class: "disc", role: "img", "aria-label": figure.textContent ?? "" }));
       figure.prepend(canvas);
-      means.push((printing) => paintMapDisc(canvas, { raster, size: MEAN_RASTER, outline: RIM, sign: 1 / most, words: mapWords() }, surroundingsOf(canvas, printing)));
+      const mean = { raster, size: MEAN_RASTER, outline: RIM, sign: 1 / most, words: mapWords() };
+      means.push((printing) => paintOn(canvas, printing, (surface, around) => paintMapDisc(surface, mean, around)));
       means[means.length - 1](false);
     }
   }
@@ -317,7 +317,7 @@ export function showGroups(session) {
       description: [found.sentence, ...found.notes].join(" "),
       width: 3 * SAVED_VIEW,
       paint: (width, around, penAt) => {
-        const top = three.save(around, penAt) + 12;
+        const top = three.save(width, around, penAt) + 12;
         return top + paintDipoleLegend(penAt(0, top), width, legendContent(), around);
       },
     },

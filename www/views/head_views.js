@@ -1,14 +1,15 @@
 /** Where the equivalent dipole lies: from above, behind and the left, and from wherever the head is turned to. */
 
-import { surroundingsOf } from "../draw/canvas.js";
-import { electrodeOnHead, paintHead } from "../draw/head.js";
+import { electrodeOnHead, LEAST_WIDTH, paintHead } from "../draw/head.js";
 import { explainedOf } from "../session/explanations.js";
 import { typeset } from "../text/figures.js";
 import { beginning } from "../text/trust.js";
 import { standpointText, word } from "../text/words.js";
 import { need } from "./element.js";
-import { keepPainted } from "./surface.js";
-import { regionMarks } from "./trust.js";
+import { figureTools } from "./figure.js";
+import { HEAD_VIEWS, headFigure, headOf, OBLIQUE } from "./plates.js";
+import { keepPainted, paintOn } from "./surface.js";
+import { isMarkShown, regionMarks } from "./trust.js";
 
 /** @import { Session } from "../session/session.js" */
 /** @import { HeadContent, Side, Standpoint } from "../draw/head.js" */
@@ -22,13 +23,6 @@ import { regionMarks } from "./trust.js";
  * @property {() => string} seen
  */
 
-/** @type {{ view: HeadView, from: Standpoint, sides: Side[] }[]} */
-export const HEAD_VIEWS = [
-  { view: "above", from: { turn: 0, tilt: 90 }, sides: ["left", "right", "front"] },
-  { view: "behind", from: { turn: 0, tilt: 0 }, sides: ["left", "right"] },
-  { view: "left", from: { turn: 90, tilt: 0 }, sides: ["front", "back"] },
-];
-const START = { turn: 35, tilt: 25 };
 /** Degrees for a press of a key or button, and for a CSS pixel of dragging. */
 const STEP = 10;
 const DRAG = 0.5;
@@ -50,7 +44,7 @@ export function showHeadViews(session) {
   const turned = need("view-turned", HTMLCanvasElement);
   const live = need("turned-from", HTMLElement);
   /** @type {Standpoint} */
-  let standpoint = START;
+  let standpoint = OBLIQUE;
   let dragging = false;
   /** @type {PaintedView[]} */
   const views = HEAD_VIEWS.map(({ view, from, sides }) => ({
@@ -76,23 +70,15 @@ export function showHeadViews(session) {
   function contentOf({ from, sides, seen }, printing) {
     const { answer, pointed: label } = session.read();
     if (!answer?.sheet) return null;
-    const { figure, picture } = answer.sheet;
-    return {
-      figure,
-      electrodes: picture.electrodes,
-      pointed: printing ? -1 : picture.electrodes.findIndex((electrode) => electrode.label === label),
-      from: from(),
-      letters: sides.map((side) => ({ side, text: word(`map.${side}`) })),
-      seen: seen(),
-      region: regionMarks(session.read()),
-    };
+    const pointed = printing ? -1 : answer.sheet.picture.electrodes.findIndex((electrode) => electrode.label === label);
+    return { ...headOf(answer.sheet, regionMarks(session.read()), from(), sides, seen()), pointed };
   }
 
   /** @param {PaintedView[]} which @param {boolean} printing */
   function paintViews(which, printing) {
     for (const view of which) {
       const content = contentOf(view, printing);
-      if (content !== null) paintHead(view.canvas, content, surroundingsOf(view.canvas, printing));
+      if (content !== null) paintOn(view.canvas, printing, (surface, around) => paintHead(surface, content, around), LEAST_WIDTH);
     }
   }
   const paint = keepPainted(need("fitted", HTMLElement), (printing) => paintViews(views, printing));
@@ -113,12 +99,12 @@ export function showHeadViews(session) {
   const turnBy = ([turn, tilt]) => look({ turn: standpoint.turn + turn, tilt: standpoint.tilt + tilt });
 
   for (const [id, by] of TURN_BUTTONS) need(id, HTMLButtonElement).addEventListener("click", () => turnBy(by));
-  need("turn-back", HTMLButtonElement).addEventListener("click", () => look(START));
+  need("turn-back", HTMLButtonElement).addEventListener("click", () => look(OBLIQUE));
   turned.addEventListener("keydown", (event) => {
     const by = TURNS[event.key];
     if (event.ctrlKey || event.metaKey || event.altKey || (by === undefined && event.key !== "Home")) return;
     event.preventDefault();
-    if (by === undefined) look(START);
+    if (by === undefined) look(OBLIQUE);
     else turnBy(by);
   });
   /** Where the hand was last while it drags. A finger that sets out up or down scrolls the page instead. */
@@ -182,4 +168,9 @@ export function showHeadViews(session) {
     },
   );
   need("region-legend", HTMLElement).addEventListener("change", paint);
+  figureTools(session, need("views-tools", HTMLElement), () => {
+    const { answer } = session.read();
+    if (!answer?.sheet) return null;
+    return headFigure(answer.sheet, { region: answer.trust?.region, ...explainedOf(session.read()) }, { turned: standpoint, shown: isMarkShown });
+  });
 }

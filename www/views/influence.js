@@ -51,7 +51,7 @@ export function showInfluence(session) {
     const picture = session.read().answer?.sheet?.picture;
     const height = Math.min(width, INFLUENCE_WIDE);
     const words = { front: word("map.front"), left: word("map.left"), right: word("map.right"), above: word("map.above") };
-    if (influence && picture) paintInfluence(penAt(0, 0), width, height, { picture, influence, words }, around);
+    if (influence && picture) paintInfluence({ pen: penAt(0, 0), width, height }, { picture, influence, words }, around);
     return height;
   };
   const place = need("influence-figure", HTMLElement);

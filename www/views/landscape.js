@@ -3,15 +3,16 @@
  * stays where it was left only if it is kept; the answer remains that of the best fit.
  */
 
-import { surroundingsOf } from "../draw/canvas.js";
+import { LEAST_WIDTH } from "../draw/head.js";
 import { leastOf, paintLandscapeBar, paintSlice, pointOnSlice } from "../draw/landscape.js";
 import { explainedOf } from "../session/explanations.js";
 import { percentText, typeset } from "../text/figures.js";
 import { word } from "../text/words.js";
 import { make, need } from "./element.js";
-import { HEAD_VIEWS } from "./head_views.js";
+import { figureTools } from "./figure.js";
+import { HEAD_VIEWS, slicesFigure } from "./plates.js";
 import { writeRows } from "./rows.js";
-import { keepPainted } from "./surface.js";
+import { keepPainted, paintOn } from "./surface.js";
 
 /** @import { Session } from "../session/session.js" */
 
@@ -79,9 +80,9 @@ export function showLandscape(session) {
     for (const { view, from, letters, canvas } of views) {
       const slice = landscape.slices.find((one) => one.view === view);
       const content = { landscape, figure, hand, felt, from, letters, seen: word(`view.${view}`) };
-      if (slice !== undefined) paintSlice(canvas, { ...content, slice }, surroundingsOf(canvas, printing));
+      if (slice !== undefined) paintOn(canvas, printing, (surface, around) => paintSlice(surface, { ...content, slice }, around), LEAST_WIDTH);
     }
-    paintLandscapeBar(bar, surroundingsOf(bar, printing));
+    paintOn(bar, printing, paintLandscapeBar);
   });
 
   function giveBack() {
@@ -157,6 +158,12 @@ export function showLandscape(session) {
   backAbove.addEventListener("click", () => {
     session.returnDipole();
     need("sentence", HTMLElement).focus();
+  });
+
+  figureTools(session, need("slices-tools", HTMLElement), () => {
+    const { landscape, hand } = told();
+    const sheet = session.read().answer?.sheet;
+    return sheet && landscape && slicesFigure(sheet, landscape, hand);
   });
 
   function writeReadout() {

@@ -4,18 +4,16 @@
  */
 
 import { paintBar } from "../draw/bar.js";
-import { surroundingsOf } from "../draw/canvas.js";
 import { electrodeOnDisc, paintDisc } from "../draw/disc.js";
 import { explainedOf } from "../session/explanations.js";
 import { stretchText, typeset } from "../text/figures.js";
-import { electrodeText, mapWords, scaleText, symbolOf, usedText, word } from "../text/words.js";
+import { electrodeText, scaleText, usedText } from "../text/words.js";
 import { need } from "./element.js";
-import { keepPainted } from "./surface.js";
+import { figureTools } from "./figure.js";
+import { discOf, mapAlt, mapsFigure, pictureOf, ROLES, scaleEnds } from "./plates.js";
+import { keepPainted, paintOn } from "./surface.js";
 
 /** @import { Session } from "../session/session.js" */
-
-/** @type {MapRole[]} */
-const ROLES = ["measured", "projected", "residual"];
 
 /** CSS pixels from an electrode within which it is meant. */
 const REACH = { mouse: 14, pen: 14, touch: 22 };
@@ -52,23 +50,20 @@ export function showMaps(session) {
   const copies = ROLES.map((role) => ({ role, canvas: need(`hand-${role}`, HTMLCanvasElement) }));
   const bar = need("scale-bar", HTMLCanvasElement);
   const said = need("electrode-said", HTMLElement);
-  const words = mapWords();
   /** The electrode whose change the keyboard asked for, until it is answered. @type {string | null} */
   let changing = null;
 
   const paint = keepPainted(need("fitted", HTMLElement), (printing) => {
     const { answer, pointed: label } = session.read();
     if (!answer?.sheet) return;
+    const { sheet } = answer;
     const { hand } = explainedOf(session.read());
-    const picture = hand?.picture ?? answer.sheet.picture;
-    const figure = hand === null ? answer.sheet.figure : { ...answer.sheet.figure, dipole: { position: hand.at, direction: hand.direction } };
+    const { picture } = pictureOf(sheet, hand);
     const pointed = printing ? -1 : picture.electrodes.findIndex((electrode) => electrode.label === label);
     for (const { role, canvas } of hand === null ? discs : [...discs, ...copies]) {
-      const stretched = role === "residual" && picture.stretch !== 1 ? stretchText(picture.stretch) : "";
-      const content = { picture, role, dipole: role === "projected", figure, pointed, stretched, words };
-      paintDisc(canvas, content, surroundingsOf(canvas, printing));
+      paintOn(canvas, printing, (surface, around) => paintDisc(surface, discOf(sheet, role, hand, pointed), around));
     }
-    paintBar(bar, picture, surroundingsOf(bar, printing));
+    paintOn(bar, printing, (surface, around) => paintBar(surface, picture, around));
   });
 
   /** Index of the electrode pointed at. @param {Picture} picture */
@@ -148,11 +143,8 @@ export function showMaps(session) {
     const sheet = session.read().answer?.sheet;
     if (!sheet) return;
     const { hand } = explainedOf(session.read());
-    const { stretch } = hand?.picture ?? sheet.picture;
-    for (const { role, canvas } of [...discs, ...copies]) {
-      const moved = hand !== null && role !== "measured";
-      canvas.setAttribute("aria-label", typeset(moved ? `${word(`map.${role}`)}, ${word("hand.moved")}: ${hand.sentence}` : sheet.alt[role]));
-    }
+    const { stretch } = pictureOf(sheet, hand).picture;
+    for (const { role, canvas } of [...discs, ...copies]) canvas.setAttribute("aria-label", mapAlt(sheet, role, hand));
     const stretched = stretch === 1 ? "" : stretchText(stretch);
     for (const id of ["stretch", "hand-stretch"]) need(id, HTMLElement).textContent = stretched;
     need("scale-words", HTMLElement).textContent = scaleText(sheet.scale.unit, stretched);
@@ -170,11 +162,10 @@ export function showMaps(session) {
     (state) => state.answer?.sheet,
     (sheet) => {
       if (!sheet) return;
-      const { scale, electrodes } = sheet;
-      /** @param {string} sign */
-      const end = (sign) => typeset(`${sign}${scale.limit} ${symbolOf(scale.unit)}`.trim());
-      need("scale-low", HTMLElement).textContent = end("-");
-      need("scale-high", HTMLElement).textContent = end("+");
+      const { electrodes } = sheet;
+      const { low, high } = scaleEnds(sheet);
+      need("scale-low", HTMLElement).textContent = low;
+      need("scale-high", HTMLElement).textContent = high;
       describe();
       const changed = electrodes.find(({ label }) => label === changing);
       if (changed !== undefined) said.textContent = usedText(changed, electrodes);
@@ -184,4 +175,12 @@ export function showMaps(session) {
     "first",
   );
   session.watch((state) => state.pointed, paint);
+  figureTools(session, need("maps-tools", HTMLElement), () => {
+    const sheet = session.read().answer?.sheet;
+    return sheet ? mapsFigure(sheet, explainedOf(session.read()).hand) : null;
+  });
+  figureTools(session, need("hand-tools", HTMLElement), () => {
+    const sheet = session.read().answer?.sheet;
+    return sheet ? { ...mapsFigure(sheet, explainedOf(session.read()).hand), name: "inward-by-hand" } : null;
+  });
 }

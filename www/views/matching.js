@@ -1,7 +1,6 @@
 /** Maps of two decompositions paired one to one by the correlation of their scalp maps; a pair opens in place. */
 
 import { freshMaps } from "../session/decompositions.js";
-import { surroundingsOf } from "../draw/canvas.js";
 import { paintMapDisc } from "../draw/disc.js";
 import { copyText } from "../export/out.js";
 import { cellsText } from "../export/table.js";
@@ -10,6 +9,7 @@ import { mapWords, matchedText, unmatchedText, word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { make, need } from "./element.js";
 import { fittedDecompositions, inOne } from "./several.js";
+import { paintOn } from "./surface.js";
 
 /** @import { Session } from "../session/session.js" */
 
@@ -121,7 +121,7 @@ export function showMatching(session) {
       const maps = await session.thumbnails(decomposition.id, [index], PAIR_RASTER);
       if (maps === null) continue;
       const words = mapWords();
-      const paint = () => paintMapDisc(canvas, { ...maps, raster: maps.measured[0], sign, words }, surroundingsOf(canvas, false));
+      const paint = () => paintOn(canvas, false, (surface, around) => paintMapDisc(surface, { ...maps, raster: maps.measured[0], sign, words }, around));
       new ResizeObserver(paint).observe(canvas);
       matchMedia("(prefers-color-scheme: dark)").addEventListener("change", paint);
     }

@@ -5,7 +5,7 @@
  */
 
 import { freshMaps } from "../session/decompositions.js";
-import { surroundingsOf } from "../draw/canvas.js";
+import { openBitmap, surroundingsOf } from "../draw/canvas.js";
 import { verdictMark } from "../draw/region.js";
 import { paintThumbnail } from "../draw/thumbnail.js";
 import { enteredNumber, enteredText, typeset } from "../text/figures.js";
@@ -421,7 +421,8 @@ export function showOverview(session) {
       const raster = pictures.get(index)?.raster ?? null;
       if (row.painted === raster && row.canvas.width === Math.round(DISC * devicePixelRatio)) continue;
       around ??= surroundingsOf(row.canvas, false);
-      paintThumbnail(row.canvas, DISC, raster && { size: RASTER, outline, raster }, around);
+      const surface = openBitmap(row.canvas, DISC, DISC, around.ratio);
+      if (surface !== null) paintThumbnail(surface, raster && { size: RASTER, outline, raster }, around);
       row.painted = raster;
     }
     askPictures().catch(session.fail);

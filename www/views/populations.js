@@ -1,7 +1,7 @@
 /** Simulated maps for the same electrodes and head: curves of residual variance, densities by eccentricity, and their numbers. */
 
 import { paintShares, sharesHeight } from "../draw/curves.js";
-import { letterFont } from "../draw/marks.js";
+import { letterFont, writeWrapped } from "../draw/marks.js";
 import { densityCounts, paintDensities } from "../draw/density.js";
 import { copyText } from "../export/out.js";
 import { cellsText } from "../export/table.js";
@@ -60,14 +60,7 @@ export function withRule(rule, paintOne) {
     const pen = penAt(0, height);
     pen.font = letterFont(around);
     pen.fillStyle = around.ink;
-    const lines = [""];
-    for (const next of typeset(rule).split(" ")) {
-      const longer = `${lines[lines.length - 1]} ${next}`.trim();
-      if (pen.measureText(longer).width <= width - 16) lines[lines.length - 1] = longer;
-      else lines.push(next);
-    }
-    lines.forEach((line, at) => pen.fillText(line, 8, RULE_LINE * (at + 1)));
-    return height + RULE_LINE * (lines.length + 1);
+    return height + RULE_LINE * (1 + writeWrapped(pen, typeset(rule), 8, RULE_LINE, width - 16, RULE_LINE));
   };
 }
 
@@ -118,7 +111,7 @@ export function showPopulations(session) {
   const paintCurves = (width, around, penAt) => {
     const rv = here()?.rv ?? 1;
     const height = sharesHeight(width, 0);
-    paintShares(penAt(0, 0), width, height, {
+    paintShares({ pen: penAt(0, 0), width, height }, {
       lines: [],
       behind: drawn().lines,
       logarithmic: true,

@@ -1,11 +1,10 @@
 /** The electrodes on a small head, without any map: to see at a glance whether axes and labels are right. */
 
-import { surroundingsOf } from "../draw/canvas.js";
-import { paintHead } from "../draw/head.js";
+import { LEAST_WIDTH, paintHead } from "../draw/head.js";
 import { shortName } from "../text/figures.js";
 import { previewText, word } from "../text/words.js";
 import { need } from "./element.js";
-import { keepPainted } from "./surface.js";
+import { keepPainted, paintOn } from "./surface.js";
 
 /** @import { Session } from "../session/session.js" */
 /** @import { Side, Standpoint } from "../draw/head.js" */
@@ -63,7 +62,7 @@ export function showPreview(session) {
         letters: sides.map((side) => ({ side, text: word(`map.${side}`) })),
         seen: word(`view.${view}`),
       };
-      paintHead(canvas, content, surroundingsOf(canvas, printing));
+      paintOn(canvas, printing, (surface, around) => paintHead(surface, content, around), LEAST_WIDTH);
     }
   });
 }

@@ -1,6 +1,5 @@
 /** Time points of one response: curves over time in which the map in view is chosen, the moving dipole, and one position over an interval. */
 
-import { surroundingsOf } from "../draw/canvas.js";
 import { layOutCourse, paintCourse } from "../draw/course.js";
 import { paintMapDisc } from "../draw/disc.js";
 import { instantText, quietText } from "../text/courses.js";
@@ -11,7 +10,7 @@ import { figureTools, showFigure } from "./figure.js";
 import { writeRows } from "./rows.js";
 import { settingId } from "./setting.js";
 import { inOne } from "./several.js";
-import { keepPainted } from "./surface.js";
+import { keepPainted, paintOn } from "./surface.js";
 import { SAVED_VIEW, shellsOf, threeViews } from "./three_views.js";
 
 /** @import { Session } from "../session/session.js" */
@@ -158,7 +157,7 @@ export function showResponse(session) {
     const picture = session.read().answer?.sheet?.picture;
     canvas.classList.toggle("waits", picture === undefined);
     if (picture === undefined) return;
-    paintMapDisc(canvas, { ...picture, raster: picture.measured, sign: 1, words: mapWords() }, surroundingsOf(canvas, printing));
+    paintOn(canvas, printing, (surface, around) => paintMapDisc(surface, { ...picture, raster: picture.measured, sign: 1, words: mapWords() }, around));
   }
 
   // Of thousands of time points each takes longer than a key that is held.
@@ -400,7 +399,7 @@ export function showResponse(session) {
       title: word("response"),
       description: [course.sentence, need("response-readout", HTMLElement).textContent].join(" "),
       width: SAVED_WIDTH,
-      paint: (width, around, penAt) => three.save(around, penAt, paintCourse(width, around, penAt, shown) + 12),
+      paint: (width, around, penAt) => three.save(width, around, penAt, paintCourse(width, around, penAt, shown) + 12),
     };
   });
 

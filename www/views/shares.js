@@ -100,7 +100,7 @@ export function showShares(session) {
     const shown = content();
     showFigure(place, shareTitle(nounOf(session.read())), printing, (width, around, penAt) => {
       const height = sharesHeight(width, lines.length);
-      paintShares(penAt(0, 0), width, height, printing ? { ...shown, pointed: null } : shown, around);
+      paintShares({ pen: penAt(0, 0), width, height }, printing ? { ...shown, pointed: null } : shown, around);
       return height;
     });
     if (!printing) placeHandle();
@@ -109,7 +109,7 @@ export function showShares(session) {
     if (points.length < 2) return;
     showFigure(about, word("information"), printing, (width, around, penAt) => {
       const wide = Math.min(width, SAVED.information);
-      paintInformation(penAt(0, 0), wide, 0.75 * wide, informationContent(points), around);
+      paintInformation({ pen: penAt(0, 0), width: wide, height: 0.75 * wide }, informationContent(points), around);
       return 0.75 * wide;
     });
   });
@@ -372,7 +372,7 @@ export function showShares(session) {
   /** @type {FigurePainter} */
   const paintSaved = (width, around, penAt) => {
     const height = sharesHeight(width, lines.length);
-    paintShares(penAt(0, 0), width, height, { ...content(), pointed: null }, around);
+    paintShares({ pen: penAt(0, 0), width, height }, { ...content(), pointed: null }, around);
     return height;
   };
   const title = () => shareTitle(nounOf(session.read()));
@@ -395,7 +395,7 @@ export function showShares(session) {
     description: informed().map(({ name, share, information }) => `${name}: ${percentText(share)}, ${enteredText(information)}`).join("; "),
     width: SAVED.information,
     paint: (width, around, penAt) => {
-      paintInformation(penAt(0, 0), width, 0.75 * width, informationContent(informed()), around);
+      paintInformation({ pen: penAt(0, 0), width, height: 0.75 * width }, informationContent(informed()), around);
       return 0.75 * width;
     },
   }));

@@ -1,4 +1,20 @@
-/** When what is painted must be painted again: size, theme, resolution and paper. */
+/** Painting a canvas of the page, and when that must be done again: size, theme, resolution and paper. */
+
+import { openCanvas, surroundingsOf } from "../draw/canvas.js";
+
+/** @import { Surface, Surroundings } from "../draw/canvas.js" */
+
+/**
+ * @param {HTMLCanvasElement} canvas
+ * @param {boolean} printing
+ * @param {(surface: Surface, around: Surroundings) => void} paint
+ * @param {number} [least] the width that what is painted needs
+ */
+export function paintOn(canvas, printing, paint, least) {
+  const around = surroundingsOf(canvas, printing);
+  const surface = openCanvas(canvas, around, least);
+  if (surface !== null) paint(surface, around);
+}
 
 /** The query names one resolution, so it is asked anew after every change. @param {() => void} paint */
 function watchRatio(paint) {

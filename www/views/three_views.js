@@ -1,11 +1,13 @@
 /** Many dipoles seen from above, behind and the left, on canvases of one panel; one that is clicked on is told. */
 
-import { openCanvas, surroundingsOf } from "../draw/canvas.js";
+import { surfaceAt } from "../draw/canvas.js";
 import { dipoleOnHead, paintDipoles } from "../draw/dipoles.js";
 import { LEAST_WIDTH } from "../draw/head.js";
+import { layOutViews } from "../draw/plates.js";
 import { word } from "../text/words.js";
 import { make } from "./element.js";
-import { HEAD_VIEWS } from "./head_views.js";
+import { HEAD_VIEWS } from "./plates.js";
+import { paintOn } from "./surface.js";
 
 /** @import { Surroundings } from "../draw/canvas.js" */
 /** @import { DipolesContent } from "../draw/dipoles.js" */
@@ -53,17 +55,16 @@ export function threeViews(place, title, content, choose) {
     /** @param {boolean} printing */
     paint(printing) {
       for (const { canvas, view } of views) {
-        const around = surroundingsOf(canvas, printing);
-        const opened = openCanvas(canvas, around, LEAST_WIDTH);
-        if (opened !== null) paintDipoles(opened.pen, opened.width, opened.height, { ...content(!printing), ...view }, around);
+        paintOn(canvas, printing, (surface, around) => paintDipoles(surface, { ...content(!printing), ...view }, around), LEAST_WIDTH);
       }
     },
-    /** All three side by side, as they are saved. @param {Surroundings} around @param {(x: number, y: number) => CanvasRenderingContext2D} penAt @param {number} [top] */
-    save(around, penAt, top = 0) {
-      views.forEach(({ view }, k) => {
-        paintDipoles(penAt(k * SAVED_VIEW, top), SAVED_VIEW, SAVED_VIEW, { ...content(false), ...view }, around);
+    /** All three side by side, as they are saved. @param {number} width @param {Surroundings} around @param {(x: number, y: number) => CanvasRenderingContext2D} penAt @param {number} [top] */
+    save(width, around, penAt, top = 0) {
+      const { boxes, height } = layOutViews(width, views.length);
+      boxes.forEach((box, k) => {
+        paintDipoles(surfaceAt(penAt, { ...box, y: top + box.y }, LEAST_WIDTH), { ...content(false), ...views[k].view }, around);
       });
-      return top + SAVED_VIEW;
+      return top + height;
     },
   };
 }

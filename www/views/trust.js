@@ -8,33 +8,27 @@ import { explainedOf, verdictOf } from "../session/explanations.js";
 import { drawnText, verdictParts } from "../text/trust.js";
 import { word } from "../text/words.js";
 import { make, need } from "./element.js";
+import { marksOf } from "./plates.js";
 import { writeRows } from "./rows.js";
 import { dropOrphanedNote, withTerms } from "./terms.js";
 
 /** @import { Session } from "../session/session.js" */
 /** @import { RegionMarks } from "../draw/region.js" */
+/** @import { MarkKind } from "./plates.js" */
 
 /** The time left is told from here on, when it says something. */
 const TOLD_MS = 700;
 
-/** What is drawn into the views besides the best fit, by the boxes of the legend. @param {SessionState} state @returns {RegionMarks} */
+/** What is drawn into the views of the map in view besides the best fit. @param {SessionState} state @returns {RegionMarks} */
 export function regionMarks(state) {
   const region = state.answer?.trust?.region;
   const { alternatives, hand } = explainedOf(state);
-  /** @template T @param {string} kind @param {T} marks @param {T} none @returns {T} */
-  const shown = (kind, marks, none) => (need(`region-${kind}`, HTMLInputElement).checked ? marks : none);
-  return {
-    cloud: shown("cloud", region?.cloud ?? [], []),
-    errors: shown("errors", region?.ellipsoid ?? null, null),
-    noise: shown("noise", region?.noise_only ?? null, null),
-    repeats: shown("repeats", region?.repeats?.points ?? [], []),
-    others: [
-      ...(alternatives?.kinds ?? []).flatMap(({ kind, dipoles }) =>
-        kind === "single" ? [] : dipoles.flatMap((dipole) => shown(kind, [{ kind, ...dipole }], [])),
-      ),
-      ...(hand === null ? [] : [{ kind: /** @type {const} */ ("hand"), position: hand.at, direction: hand.direction }]),
-    ],
-  };
+  return marksOf({ region, alternatives, hand }, isMarkShown);
+}
+
+/** By the boxes of the legend. @param {MarkKind} kind */
+export function isMarkShown(kind) {
+  return need(`region-${kind}`, HTMLInputElement).checked;
 }
 
 /** @param {string} id @param {{ text: string }[]} lines */
