@@ -686,6 +686,8 @@ interface GlueStudy {
   alternatives(index: number): Alternatives | null;
   influence(index: number): Influence | null;
   whatIf(index: number): WhatIf | null;
+  methods(done?: Partial<Done>): Methods;
+  record(index: number, done?: Partial<Done>): TechnicalRecord;
   landscape(index: number, at?: Float64Array): Landscape | null;
   probe(index: number, at: Float64Array, picture: boolean): Probe | null;
   unshared(first: number, last: number, milliseconds: number): Float32Array;
@@ -787,6 +789,10 @@ interface Study {
   alternatives(index: number): Alternatives | null;
   influence(index: number): Influence | null;
   whatIf(index: number): WhatIf | null;
+  /** In the words of a paper, by what was done beyond the fits. */
+  methods(done?: Partial<Done>): Methods;
+  /** A note on one map for a record; draws populations that a verdict needs and that were not handed over. */
+  record(index: number, done?: Partial<Done>): TechnicalRecord;
   /** Three slices through a place in scalp radii, or through the best one. */
   landscape(index: number, at?: number[]): Landscape | null;
   /** The map with its dipole at a place by hand. */
@@ -920,6 +926,8 @@ type WorkerTask =
   | { kind: "alternatives"; key: number; index: number; populations: GivenPopulations | null }
   | { kind: "influence"; key: number; index: number }
   | { kind: "what-if"; key: number; index: number }
+  | { kind: "methods"; key: number; names?: Record<string, string>; done: Done }
+  | { kind: "record"; key: number; names?: Record<string, string>; index: number; done: Done; populations: GivenPopulations | null }
   | { kind: "landscape"; key: number; index: number; at: number[] | null }
   | { kind: "probe"; key: number; index: number; at: number[]; picture: boolean }
   | { kind: "suspects"; key: number }
@@ -936,6 +944,40 @@ type WorkerReply =
   | { id: number; value: unknown }
   | { id: number; progress: FitProgress | PieceProgress }
   | { id: number; fault: Fault };
+
+/** What was done beyond the fits: for methods anywhere in the work, for a record with its map. */
+interface Done {
+  region: boolean;
+  populations: boolean;
+  verdict: boolean;
+  alternatives: boolean;
+  influence: boolean;
+  what_if: boolean;
+  /** The course of a response over time. */
+  course: boolean;
+  /** Near-dipolar shares, up to `threshold`. */
+  shares: boolean;
+  threshold: number | null;
+  /** Dipoles of several people in groups; their number where it was chosen by hand. */
+  groups: boolean;
+  group_count: number | null;
+  /** Maps of two decompositions, one to one. */
+  matches: boolean;
+  decompositions: number;
+  /** People that the decompositions come from, 0 where that is not known. */
+  subjects: number;
+}
+
+interface Methods {
+  paragraph: string;
+  references: string[];
+}
+
+/** A technical note on one map. */
+interface TechnicalRecord {
+  title: string;
+  parts: { heading: string; lines: string[] }[];
+}
 
 /** Settings as the session holds them. */
 interface PageSettings extends EngineSettings {

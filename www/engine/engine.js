@@ -183,6 +183,8 @@ export function makeEngine(compiled, keeps = true) {
       alternatives: (index) => use((opened) => opened.alternatives(index)),
       influence: (index) => use((opened) => opened.influence(index)),
       whatIf: (index) => use((opened) => opened.whatIf(index)),
+      methods: (done) => use((opened) => opened.methods(done)),
+      record: (index, done) => use((opened) => opened.record(index, done)),
       landscape: (index, at) => use((opened) => opened.landscape(index, at && Float64Array.from(at))),
       probe: (index, at, picture) => use((opened) => opened.probe(index, Float64Array.from(at), picture)),
       unshared: (first, last, milliseconds) => use((opened) => opened.unshared(first, last, milliseconds)),

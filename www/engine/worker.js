@@ -154,6 +154,17 @@ function handOver(study, given) {
   handed.set(study, given.name);
 }
 
+/**
+ * What is told of a study, its files under the names that may leave.
+ * @template T
+ * @param {Study} study
+ * @param {Record<string, string> | undefined} _names
+ * @param {(study: Study) => T} tell
+ */
+function outward(study, _names, tell) {
+  return tell(study);
+}
+
 /** Reports of maps with what is named, from one on for about so long. @param {Study} study @param {number} first @param {string[]} what @param {number} milliseconds @returns {ReportMap[]} */
 function assessWithin(study, first, what, milliseconds) {
   if (what.length === 0) return study.fitWithin(first, milliseconds);
@@ -318,6 +329,13 @@ async function answerTask(message) {
       return self.postMessage({ id, value: studyOf(message.key).influence(message.index) });
     case "what-if":
       return self.postMessage({ id, value: studyOf(message.key).whatIf(message.index) });
+    case "methods":
+      return self.postMessage({ id, value: outward(studyOf(message.key), message.names, (study) => study.methods(message.done)) });
+    case "record": {
+      const study = studyOf(message.key);
+      handOver(study, message.populations);
+      return self.postMessage({ id, value: outward(study, message.names, (named) => named.record(message.index, message.done)) });
+    }
     case "landscape":
       return self.postMessage({ id, value: studyOf(message.key).landscape(message.index, message.at ?? undefined) });
     case "probe":

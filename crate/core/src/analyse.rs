@@ -3,6 +3,7 @@
 mod compare;
 mod explanations;
 mod landscape;
+mod methods;
 mod response;
 mod stability;
 mod tables;
@@ -226,6 +227,11 @@ impl Study {
 
     /// The report without its maps, with the populations that are kept.
     pub fn preamble(&self) -> Report {
+        Report { suspects: self.asked_suspects(), ..self.facts() }
+    }
+
+    /// The same without what has to be fitted for it.
+    fn facts(&self) -> Report {
         Report {
             format: "inward-report",
             version: 1,
@@ -236,7 +242,7 @@ impl Study {
             electrodes: self.electrodes(),
             maps: Vec::new(),
             populations: self.whole_populations(),
-            suspects: self.asked_suspects(),
+            suspects: Vec::new(),
             notes: self.notes(),
             understood: self.understood(),
         }

@@ -5,6 +5,7 @@ mod clock;
 mod compare;
 mod explain;
 mod picture;
+mod record;
 mod row;
 mod trust;
 mod wire;

@@ -141,10 +141,21 @@ impl Study {
         }
     }
 
+    /// Whether mirrored and free pairs are tried at all.
+    pub(super) fn pairs_are_tried(&self) -> [bool; 2] {
+        let [mirrored, free] =
+            [Arrangement::Mirrored, Arrangement::Free].map(|one| enough(self.fitter.field().count(), one));
+        [mirrored && self.knows_midline(), free]
+    }
+
+    fn knows_midline(&self) -> bool {
+        self.placement.axes.evidence != Evidence::Nothing
+    }
+
     /// Both arrangements, each fitted to the map unless it cannot count.
     fn try_pairs(&self, values: &[f64], fit: &Fit) -> [Tried; 2] {
         let radius = self.placement.sphere.sphere.radius;
-        let midline = self.placement.axes.evidence != Evidence::Nothing;
+        let midline = self.knows_midline();
         let kinds = [(Explanation::MirroredPair, Arrangement::Mirrored), (Explanation::TwoDipoles, Arrangement::Free)];
         kinds.map(|(kind, arrangement)| {
             let mut tried = Tried {
@@ -155,7 +166,7 @@ impl Study {
                 refused: None,
                 tally: Tally::default(),
             };
-            if values.len() < arrangement.parameters() + FEWEST_LEFT {
+            if !enough(values.len(), arrangement) {
                 tried.refused = Some(Refusal::FewElectrodes);
                 return tried;
             }
@@ -264,6 +275,10 @@ fn gain(single: f64, pair: f64, errors_leave: f64) -> f64 {
 
 /// Values that must be left besides the numbers that are fitted.
 const FEWEST_LEFT: usize = 4;
+
+fn enough(values: usize, arrangement: Arrangement) -> bool {
+    values >= arrangement.parameters() + FEWEST_LEFT
+}
 
 /// Figures of a fit with so many numbers.
 #[derive(Clone, Copy)]

@@ -186,6 +186,11 @@ impl Study {
         made
     }
 
+    /// Whether brain can take the place of cerebrospinal fluid.
+    pub(super) fn has_fluid(&self) -> bool {
+        without_fluid(&self.shells).is_some()
+    }
+
     /// Fitted to the highest electrodes.
     fn upper_sphere(&self) -> Option<Sphere> {
         let mut electrodes: Vec<&Placed> = self.placement.electrodes.iter().collect();

@@ -7,7 +7,9 @@ mod figure;
 mod groups;
 mod landscape;
 mod messages;
+mod methods;
 mod number;
+mod record;
 mod response;
 mod row;
 mod settings;
@@ -28,6 +30,8 @@ pub use groups::{Criterion, Group, GroupedDipole, GroupedMember, Groups, GroupsR
 pub(crate) use landscape::slice_words;
 pub use landscape::{Landscape, Level, Probe, Slice};
 pub use messages::{hint, is_warning, message, within_decomposition};
+pub use methods::{Done, Facts, Methods};
+pub use record::{Record, RecordPart};
 pub use response::{Fixed, FixedFit, Floor, Instant, Measured, NoiseFound, Response};
 pub use row::{Column, MapRow, columns};
 pub use settings::{Assessment, HeadSettings, Polarity, Settings};

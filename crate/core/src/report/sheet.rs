@@ -174,7 +174,7 @@ fn electrodes(map: &FittedMap, sites: &[Site], unit: Written) -> Vec<SheetElectr
     sites.iter().map(electrode).collect()
 }
 
-fn sentence(map: &FittedMap, head: &HeadReport) -> String {
+pub(super) fn sentence(map: &FittedMap, head: &HeadReport) -> String {
     let dipole = &map.dipole;
     let shares = format!(
         "One equivalent dipole reproduces {} % of this map (residual variance {} %, {} degrees of freedom) in a spherical model.",
@@ -363,7 +363,7 @@ pub(super) fn rows(map: &FittedMap, head: &HeadReport, used: usize, placed: usiz
 }
 
 /// The head's title and source.
-fn head_title(head: &HeadReport) -> (&'static str, &'static str) {
+pub(super) fn head_title(head: &HeadReport) -> (&'static str, &'static str) {
     heads()
         .iter()
         .find(|known| head.name == Some(known.name))
@@ -375,7 +375,7 @@ fn skull(head: &HeadReport) -> Option<usize> {
     head.shells.iter().position(|shell| shell.tissue.eq_ignore_ascii_case("skull")).filter(|index| *index > 0)
 }
 
-fn head_sheet(head: &HeadReport) -> HeadSheet {
+pub(super) fn head_sheet(head: &HeadReport) -> HeadSheet {
     let (title, source) = head_title(head);
     let mut rows = vec![
         row(
@@ -445,7 +445,7 @@ pub(super) fn row(
     Row { code: code.into(), label: label.into(), value, unit, meaning }
 }
 
-fn capitalised(word: &str) -> String {
+pub(super) fn capitalised(word: &str) -> String {
     let mut letters = word.chars();
     letters.next().map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
 }

@@ -10,7 +10,7 @@ use crate::math::{Resampler, mean, sort_by_number};
 use serde::{Deserialize, Serialize};
 
 /// Fewest subjects that an interval is computed from.
-const FEWEST_SUBJECTS: usize = 5;
+pub(super) const FEWEST_SUBJECTS: usize = 5;
 
 /// A decomposition in numbers.
 #[derive(Clone, Debug, Default, PartialEq, Deserialize)]

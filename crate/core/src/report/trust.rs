@@ -2,7 +2,7 @@
 
 use super::number::{given, hundredths, millimetres, percent, percent_left, significant, tenths};
 use super::sheet::{Row, Written, row};
-use super::{FittedMap, HeadReport, Settings};
+use super::{ErrorSettings, FittedMap, HeadReport, Settings, SourceSettings};
 use crate::assess::{Hint, Reason, ReasonCode, Reference, Word};
 use crate::map::MapUnit;
 use crate::math::{Autocorrelation, Ellipsoid, Vec3};
@@ -444,10 +444,10 @@ pub struct TrustPopulation {
 }
 
 /// The published error that stands beside every millimetre.
-const PUBLISHED: &str =
+pub(super) const PUBLISHED: &str =
     "Published error of sphere models: about 10 mm (176 implanted sources, 10.6 ± 5.5 mm; Cuffin 2001).";
 
-const CAUTIONS: [&str; 3] = [
+pub(super) const CAUTIONS: [&str; 3] = [
     "These populations are simulations in this model; they give no probability that the map has a single source.",
     "A low residual variance says nothing about extent: active patches of 19 to 49 cm² fit with less than 1 % left over, 8 to 19 mm too deep (simulation at 71 electrodes).",
     "For research. Not a medical device; licensed practice and local rules come first.",
@@ -505,7 +505,7 @@ impl Trust {
     }
 }
 
-fn region_rows(region: &RegionReport, unit: Written) -> Vec<Row> {
+pub(super) fn region_rows(region: &RegionReport, unit: Written) -> Vec<Row> {
     let noise = &region.noise_only;
     let axes = region.semi_axes_mm.map(millimetres).join(" × ");
     let mut rows = vec![
@@ -570,7 +570,7 @@ fn region_rows(region: &RegionReport, unit: Written) -> Vec<Row> {
     rows
 }
 
-fn causes(region: &RegionReport, unit: Written) -> Vec<TrustCause> {
+pub(super) fn causes(region: &RegionReport, unit: Written) -> Vec<TrustCause> {
     let line = |cause: &CauseReport| {
         let (label, size) = match (cause.cause, &cause.size[..]) {
             ("electrodes", [mm]) => ("Electrodes misplaced", format!("{} mm", given(*mm))),
@@ -698,12 +698,36 @@ pub fn rule(
 ) -> String {
     let shells: Vec<String> =
         head.shells.iter().map(|s| format!("{} {}", s.tissue, given(s.conductivity_s_per_m))).collect();
-    let (sources, errors) = (&settings.sources, &settings.errors);
+    format!(
+        "{electrodes} electrodes on a sphere of {} mm ({}; S/m). Sources {}. Single dipoles: {}, {} % {}. {draws} maps of each kind, seed {}.",
+        tenths(head.radius_mm),
+        shells.join(", "),
+        sources(&settings.sources),
+        drawn_errors(&settings.errors, skull, sphere),
+        percent(settings.sources.noise),
+        drawn_noise(&settings.errors),
+        settings.sources.seed
+    )
+}
+
+/// Where simulated sources are and how they point.
+pub(super) fn sources(sources: &SourceSettings) -> String {
     let pointing = match sources.orientation {
         Orientation::Isotropic => "pointing anywhere",
         Orientation::Radial => "pointing outwards or inwards",
         Orientation::Tangential => "pointing along the sphere",
     };
+    format!(
+        "even in the volume of the brain up to eccentricity {}, above z = {} {} {} y in brain radii, {pointing}, of equal moments",
+        given(sources.max_eccentricity),
+        given(sources.floor[0]),
+        if sources.floor[1] < 0.0 { "−" } else { "+" },
+        given(sources.floor[1].abs())
+    )
+}
+
+/// What a drawn head is off in.
+pub(super) fn drawn_errors(errors: &ErrorSettings, skull: Option<[f64; 2]>, sphere: bool) -> String {
     let skull = match skull {
         Some([least, most]) => format!("brain conducting {} to {} times as well as skull", given(least), given(most)),
         None => "conductivities as modelled".into(),
@@ -713,20 +737,13 @@ pub fn rule(
         (true, 1.0) => "sphere off by the standard error of its fit".into(),
         (true, times) => format!("sphere off by {} times the standard error of its fit", given(times)),
     };
-    let noise = match errors.background_sources {
+    format!("electrodes {} mm off, {skull}, {sphere}", given(errors.electrodes_mm))
+}
+
+/// Where drawn noise comes from.
+pub(super) fn drawn_noise(errors: &ErrorSettings) -> String {
+    match errors.background_sources {
         0 => "independent noise".into(),
         count => format!("noise of {count} weak sources"),
-    };
-    format!(
-        "{electrodes} electrodes on a sphere of {} mm ({}; S/m). Sources even in the volume of the brain up to eccentricity {}, above z = {} {} {} y in brain radii, {pointing}, of equal moments. Single dipoles: electrodes {} mm off, {skull}, {sphere}, {} % {noise}. {draws} maps of each kind, seed {}.",
-        tenths(head.radius_mm),
-        shells.join(", "),
-        given(sources.max_eccentricity),
-        given(sources.floor[0]),
-        if sources.floor[1] < 0.0 { "−" } else { "+" },
-        given(sources.floor[1].abs()),
-        given(errors.electrodes_mm),
-        percent(sources.noise),
-        sources.seed
-    )
+    }
 }

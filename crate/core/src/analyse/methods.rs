@@ -1,0 +1,53 @@
+//! What was done in the words of a paper, and a note on one map for a record.
+
+use super::{Study, normalise};
+use crate::finding::Error;
+use crate::forward::Images;
+use crate::report::{Alternatives, Assessment, Done, Facts, MapReport, Methods, Record};
+use crate::simulate::HeadErrors;
+
+impl Study {
+    /// What was done, as a paper tells it, with the sources that it cites; nothing is fitted for it.
+    pub fn methods(&self, done: &Done) -> Methods {
+        let errors = self.head_errors();
+        let unfitted = |&index: &usize| self.values(index).ok().and_then(|values| normalise(&values)).is_none();
+        Methods::new(
+            &Facts {
+                report: &self.facts(),
+                maps: self.count(),
+                unfitted: (0..self.count()).filter(unfitted).count(),
+                measured: self.placement.measured,
+                axes: &self.placement.axes,
+                images: self.fitter.field().images().map(Images::count),
+                skull: errors.skull_ratio,
+                sphere: errors.sphere.is_some(),
+                tissues: [HeadErrors::has_skull(&self.shells), self.has_fluid()],
+                pairs: self.pairs_are_tried(),
+            },
+            done,
+        )
+    }
+
+    /// A note on one map, counted from 0, with what is said to be done; populations that a verdict needs and that are not kept
+    /// are drawn, which takes seconds.
+    ///
+    /// # Errors
+    /// `map-index`.
+    pub fn record(&self, index: usize, done: &Done) -> Result<Record, Error> {
+        let asked = [
+            (done.region, Assessment::Region),
+            (done.alternatives, Assessment::Alternatives),
+            (done.verdict, Assessment::Verdict),
+        ];
+        let asked: Vec<Assessment> = asked.into_iter().filter(|(done, _)| *done).map(|(_, what)| what).collect();
+        let map = self.assess(index, &asked)?;
+        let alternatives = match &map {
+            MapReport::Fitted(map) => map
+                .alternatives
+                .as_ref()
+                .map(|found| Alternatives::new(map, found, self.placement.sphere.sphere.radius, None)),
+            MapReport::Failed { .. } => None,
+        };
+        Ok(Record::new(&self.facts(), [index, self.count()], &map, alternatives.as_ref(), done))
+    }
+}
