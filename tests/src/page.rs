@@ -389,6 +389,31 @@ impl Page {
         }
     }
 
+    /// Saves a figure as `kind` by the tools at `place`, and says where it lies; only `kind`s of text can be read by `download`.
+    pub fn save_figure(&self, place: &str, kind: &str, name: &str) -> std::path::PathBuf {
+        if self.attribute(&format!("{place} .figure-save"), "aria-expanded") == "false" {
+            self.click(&format!("{place} .figure-save"));
+        }
+        let file = self.session.downloads().join(name);
+        let _ = std::fs::remove_file(&file);
+        self.click(&format!("{place} .figure-panel [data-figure={kind}]"));
+        self.until("the figure", |page| {
+            page.text(".figure-panel [role=status]").starts_with(&format!("Saved as {name}")) && file.exists()
+        });
+        file
+    }
+
+    /// The text of a figure that is saved as SVG.
+    pub fn svg(&self, place: &str, name: &str) -> String {
+        let file = self.save_figure(place, "svg", name);
+        let mut text = String::new();
+        self.until("a whole figure", |_| {
+            text = std::fs::read_to_string(&file).unwrap_or_default();
+            text.trim_end().ends_with("</svg>")
+        });
+        text
+    }
+
     fn downloaded(&self, ask: impl Fn()) -> Value {
         let file = self.session.downloads().join("inward-report.json");
         let _ = std::fs::remove_file(&file);

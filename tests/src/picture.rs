@@ -64,6 +64,11 @@ impl Picture {
         Some(Self { width, height, colours })
     }
 
+    /// Red, green and blue of a pixel.
+    pub fn at(&self, x: usize, y: usize) -> [u8; 3] {
+        self.colours[y * self.width + x]
+    }
+
     /// Share of the squares of `side` pixels whose mean colours differ by more than `tolerance` of 255 in some channel.
     pub fn difference(&self, other: &Self, side: usize, tolerance: f64) -> f64 {
         if (self.width, self.height) != (other.width, other.height) {

@@ -129,7 +129,7 @@ fn a_response_is_chosen_in_time(browser: Browser) {
     assert_eq!(page.accessibility_findings(), Vec::<String>::new());
     page.picture("response");
     in_all_surroundings(&page, "response");
-    let figure = page.download("#response-tools [data-figure=svg]", "inward-response.svg");
+    let figure = page.svg("#response-tools", "inward-response.svg");
     for part in ["global field power", "mid-rise", "one position", "seen from above"] {
         assert!(figure.contains(part), "{part}");
     }
@@ -246,7 +246,7 @@ fn dipoles_of_several_people_are_grouped(browser: Browser) {
     page.until("again", |page| page.text("#copy-groups") != "Copied");
     page.click("#groups-names");
     assert!(copied().contains("1\t01\t"));
-    let figure = page.download("#groups-tools [data-figure=svg]", "inward-groups.svg");
+    let figure = page.svg("#groups-tools", "inward-groups.svg");
     assert!(figure.contains("Group 3") && figure.contains("seen from the left"));
 
     // A member opens its map.

@@ -117,7 +117,7 @@ fn what_is_told_is_what_the_engine_finds(browser: Browser) {
     for (tools, file) in
         [("#curve-tools", "inward-reference-populations.svg"), ("#density-tools", "inward-eccentricity.svg")]
     {
-        let figure = page.download(&format!("{tools} [data-figure=svg]"), file);
+        let figure = page.svg(tools, file);
         for part in ["pointing anywhere", "two dipoles", "this map"] {
             assert!(figure.contains(part), "{file} has {part:?}");
         }

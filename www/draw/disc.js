@@ -231,10 +231,12 @@ function paintMarks(pen, width, { middle, centre, unit, edge }, content, around)
   markPointed(pen, middle + unit * shown.x, centre - unit * shown.y, label, width, around, taken);
 }
 
+/** @typedef {{ raster: Float32Array, size: number, outline: Float32Array, sign: number, words: DiscContent["words"] }} MapContent */
+
 /**
  * One map by itself, without contour lines: its colours, the rim, and the signs of how it is seen.
  * @param {Surface} surface
- * @param {{ raster: Float32Array, size: number, outline: Float32Array, sign: number, words: DiscContent["words"] }} content
+ * @param {MapContent} content
  * @param {Surroundings} around
  */
 export function paintMapDisc({ pen, width, height }, { raster, size, outline, sign, words }, around) {

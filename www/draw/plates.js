@@ -2,14 +2,14 @@
 
 import { paintBar } from "./bar.js";
 import { surfaceAt } from "./canvas.js";
-import { paintDisc } from "./disc.js";
+import { paintDisc, paintMapDisc } from "./disc.js";
 import { LEAST_WIDTH, paintHead } from "./head.js";
 import { LEVEL_DASHES, paintLandscapeBar, paintSlice } from "./landscape.js";
 import { letterFont, writeWrapped } from "./marks.js";
 import { legendMarks, paintRegion } from "./region.js";
 
 /** @import { Surface, Surroundings } from "./canvas.js" */
-/** @import { DiscContent } from "./disc.js" */
+/** @import { DiscContent, MapContent } from "./disc.js" */
 /** @import { HeadContent } from "./head.js" */
 /** @import { SliceContent } from "./landscape.js" */
 
@@ -22,6 +22,8 @@ const TEXT_LINE = 15;
 const BAR = { wide: 200, high: 12 };
 const NARROWEST_VIEW = 150;
 const LEAST_DISC = 130;
+const LARGEST_DISC = 240;
+const HEADING = 18;
 
 /** Squares in a row, or in rows of two where that would be too narrow. @param {number} width @param {number} count */
 export function layOutViews(width, count) {
@@ -57,6 +59,33 @@ function paintScale(penAt, width, top, { low, high, words }, paint, around) {
   return top + BAR.high + TEXT_LINE * (lines + 1);
 }
 
+/** A picture's heading, in bold. @param {CanvasRenderingContext2D} pen @param {string} text @param {number} side @param {Surroundings} around */
+function writeHeading(pen, text, side, around) {
+  pen.fillStyle = around.ink;
+  pen.textAlign = "center";
+  pen.textBaseline = "middle";
+  pen.font = `600 ${letterFont(around)}`;
+  pen.fillText(text, side / 2, 9, side);
+}
+
+/**
+ * Maps by themselves, each on its own scale, in rows.
+ * @param {number} width
+ * @param {Surroundings} around
+ * @param {PenAt} penAt
+ * @param {{ heading: string, map: MapContent }[]} maps
+ */
+export function paintMapRow(width, around, penAt, maps) {
+  const columns = Math.max(1, Math.min(maps.length, Math.floor(width / LEAST_DISC)));
+  const side = Math.min(width / columns, LARGEST_DISC);
+  maps.forEach(({ heading, map }, k) => {
+    const [x, y] = [(k % columns) * side, Math.floor(k / columns) * (side + HEADING)];
+    writeHeading(penAt(x, y), heading, side, around);
+    paintMapDisc(surfaceAt(penAt, { x, y: y + HEADING, width: side, height: side }, LEAST_DISC), map, around);
+  });
+  return Math.ceil(maps.length / columns) * (side + HEADING);
+}
+
 /**
  * measured − one dipole = left over.
  * @param {number} width
@@ -69,14 +98,10 @@ export function paintEquation(width, around, penAt, { discs, scale }) {
   discs.forEach(({ heading, disc }, k) => {
     const left = k * (side + SIGN_WIDE);
     const pen = penAt(left, 0);
-    pen.fillStyle = around.ink;
-    pen.textAlign = "center";
-    pen.textBaseline = "middle";
-    pen.font = `600 ${letterFont(around)}`;
-    pen.fillText(heading, side / 2, 9, side);
+    writeHeading(pen, heading, side, around);
     pen.font = letterFont(around).replace(/^\d+/, "16");
-    if (k > 0) pen.fillText(k === 1 ? "\u2212" : "=", -SIGN_WIDE / 2, 18 + side / 2);
-    paintDisc(surfaceAt(penAt, { x: left, y: 18, width: side, height: side }, LEAST_DISC), disc, around);
+    if (k > 0) pen.fillText(k === 1 ? "\u2212" : "=", -SIGN_WIDE / 2, HEADING + side / 2);
+    paintDisc(surfaceAt(penAt, { x: left, y: HEADING, width: side, height: side }, LEAST_DISC), disc, around);
   });
   return paintScale(penAt, width, side + 28, scale, (surface) => paintBar(surface, discs[0].disc.picture, around), around);
 }
@@ -115,9 +140,9 @@ export function paintViews(width, around, penAt, { views, marks }) {
 export function paintSlices(width, around, penAt, { slices, scale, levels }) {
   const { boxes, height } = layOutViews(width, slices.length);
   slices.forEach((slice, k) => paintSlice(surfaceAt(penAt, boxes[k], LEAST_WIDTH), slice, around));
-  const below = paintScale(penAt, width, height + 4, scale, (surface) => paintLandscapeBar(surface, around), around);
+  let below = paintScale(penAt, width, height + 4, scale, (surface) => paintLandscapeBar(surface, around), around);
   levels.forEach((text, k) => {
-    const pen = penAt(0, below + TEXT_LINE * k);
+    const pen = penAt(0, below);
     pen.strokeStyle = pen.fillStyle = around.ink;
     pen.lineWidth = 1.25;
     pen.setLineDash(LEVEL_DASHES[k]);
@@ -127,7 +152,7 @@ export function paintSlices(width, around, penAt, { slices, scale, levels }) {
     pen.stroke();
     pen.font = letterFont(around);
     pen.textBaseline = "middle";
-    pen.fillText(text, 40, 0, width - 48);
+    below += TEXT_LINE * writeWrapped(pen, text, 40, 0, width - 48, TEXT_LINE);
   });
-  return below + TEXT_LINE * levels.length;
+  return below;
 }

@@ -18,6 +18,7 @@ export const COURSE_WORDS = {
   "response.strength": "strength",
   "response.moving": "moving",
   "response.fixed": "one position",
+  "response.maps": "Maps at the named time points",
   "response.views": "Positions of the moving dipole",
   "response.quiet": "at or below the floor, where residual variance and position say little",
   "response.baseline": "Set the baseline window",

@@ -263,7 +263,12 @@ const WORDS = {
   subject: "Subject",
   "figure.svg": "SVG",
   "figure.png": "PNG",
-  "figure.size": "Size of the PNG",
+  "figure.save": "Save figure",
+  "figure.width": "Width",
+  "figure.page": "as on the page",
+  "figure.resolution": "PNG pixels an inch",
+  "figure.own-scales": "Each map on its own scale.",
+  "figure.none": "Nothing is drawn yet.",
 
   shares: "Near-dipolar share",
   "shares.x": "x, residual variance (RV) in %",
@@ -350,6 +355,21 @@ export function word(code) {
 
 /** What stands around a map. */
 export const mapWords = () => ({ front: word("map.front"), left: word("map.left"), right: word("map.right"), above: word("map.above") });
+
+/** @param {{ width: number, height: number }} dots */
+function dotsText({ width, height }) {
+  return `${width.toLocaleString("en-GB")} × ${height.toLocaleString("en-GB")} pixels`;
+}
+
+/** @param {string} name @param {{ width: number, height: number } | null} dots */
+export function figureSavedText(name, dots) {
+  return `Saved as ${name}${dots === null ? "" : `, ${dotsText(dots)}`}.`;
+}
+
+/** @param {{ width: number, height: number }} dots */
+export function tooManyDotsText(dots) {
+  return `${dotsText(dots)} are more than browsers draw: choose a smaller width or resolution, or SVG.`;
+}
 
 /** @param {Progress} progress */
 export function progressText({ done, total, left, about }) {

@@ -7,7 +7,7 @@ import { need } from "./element.js";
 import { figureTools, showFigure } from "./figure.js";
 import { fittedDecompositions, seriesOf, inOne } from "./several.js";
 import { keepPainted } from "./surface.js";
-import { SAVED_VIEW, shellsOf, threeViews } from "./three_views.js";
+import { LEAST_VIEWS, SAVED_VIEWS, shellsOf, threeViews } from "./three_views.js";
 
 /** @import { Session } from "../session/session.js" */
 /** @import { ManyDipole } from "../draw/dipoles.js" */
@@ -152,12 +152,13 @@ export function showAllDipoles(session) {
     name: "inward-dipoles",
     title: word("dipoles"),
     description: need("dipoles-count", HTMLElement).textContent ?? "",
-    width: 3 * SAVED_VIEW,
+    width: SAVED_VIEWS,
+    least: LEAST_VIEWS,
     paint: (width, around, penAt) => {
       const below = three.save(width, around, penAt) + 12;
       return below + paintDipoleLegend(penAt(0, below), width, legendContent(), around);
     },
-  }));
+  }), views);
 
   session.watch(
     ({ answer }) => answer?.chosen,

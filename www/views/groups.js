@@ -10,10 +10,11 @@ import { mapWords, shareAtText, word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { make, need, rewrite } from "./element.js";
 import { figureTools, showFigure } from "./figure.js";
+import { mapRowFigure } from "./plates.js";
 import { keepTyped } from "./setting.js";
 import { fittedDecompositions, inOne } from "./several.js";
 import { keepPainted, paintOn } from "./surface.js";
-import { SAVED_VIEW, shellsOf, threeViews } from "./three_views.js";
+import { LEAST_VIEWS, SAVED_VIEWS, shellsOf, threeViews } from "./three_views.js";
 
 /** @import { Session } from "../session/session.js" */
 
@@ -119,6 +120,8 @@ export function showGroups(session) {
 
   /** What paints the mean maps. @type {((printing: boolean) => void)[]} */
   let means = [];
+  /** What they are of. @type {Parameters<typeof mapRowFigure>[2]} */
+  let drawn = [];
   /** Mean maps, one recording after the other. @param {string} mine @param {Groups} groups */
   async function average(mine, { groups }) {
     /** @type {[Float32Array, number][][]} */
@@ -149,6 +152,7 @@ export function showGroups(session) {
       const canvas = /** @type {HTMLCanvasElement} */ (make("canvas", "", { class: "disc", role: "img", "aria-label": figure.textContent ?? "" }));
       figure.prepend(canvas);
       const mean = { raster, size: MEAN_RASTER, outline: RIM, sign: 1 / most, words: mapWords() };
+      drawn.push({ heading: groupName(at), map: mean });
       means.push((printing) => paintOn(canvas, printing, (surface, around) => paintMapDisc(surface, mean, around)));
       means[means.length - 1](false);
     }
@@ -158,6 +162,7 @@ export function showGroups(session) {
     need("groups-found", HTMLElement).hidden = found === null;
     need("groups-found", HTMLElement).classList.remove("waits");
     means = [];
+    drawn = [];
     dipoles = listed();
     if (found === null) return;
     const { groups, sentence, notes, criterion, count: number } = found;
@@ -315,13 +320,15 @@ export function showGroups(session) {
       name: "inward-groups",
       title: word("groups"),
       description: [found.sentence, ...found.notes].join(" "),
-      width: 3 * SAVED_VIEW,
+      width: SAVED_VIEWS,
+      least: LEAST_VIEWS,
       paint: (width, around, penAt) => {
         const top = three.save(width, around, penAt) + 12;
         return top + paintDipoleLegend(penAt(0, top), width, legendContent(), around);
       },
     },
   );
+  figureTools(session, need("means-tools", HTMLElement), () => mapRowFigure("inward-group-means", word("groups.maps"), drawn));
   for (const [id, codes] of /** @type {[string, string[]][]} */ ([["groups-people", ["recording", "person", "dipoles"]], ["groups-table", GROUP_COLUMNS]])) {
     need(id, HTMLTableElement).tHead?.rows[0].append(...codes.map((code) => make("th", word(`groups.${code}`), { scope: "col" })));
   }

@@ -172,5 +172,5 @@ export function showHeadViews(session) {
     const { answer } = session.read();
     if (!answer?.sheet) return null;
     return headFigure(answer.sheet, { region: answer.trust?.region, ...explainedOf(session.read()) }, { turned: standpoint, shown: isMarkShown });
-  });
+  }, need("views-tools", HTMLElement));
 }

@@ -164,7 +164,7 @@ export function showLandscape(session) {
     const { landscape, hand } = told();
     const sheet = session.read().answer?.sheet;
     return sheet && landscape && slicesFigure(sheet, landscape, hand);
-  });
+  }, panel);
 
   function writeReadout() {
     const { felt, hand } = told();

@@ -177,10 +177,10 @@ export function showMaps(session) {
   session.watch((state) => state.pointed, paint);
   figureTools(session, need("maps-tools", HTMLElement), () => {
     const sheet = session.read().answer?.sheet;
-    return sheet ? mapsFigure(sheet, explainedOf(session.read()).hand) : null;
-  });
+    return sheet && mapsFigure(sheet, explainedOf(session.read()).hand);
+  }, need("maps-tools", HTMLElement));
   figureTools(session, need("hand-tools", HTMLElement), () => {
     const sheet = session.read().answer?.sheet;
-    return sheet ? { ...mapsFigure(sheet, explainedOf(session.read()).hand), name: "inward-by-hand" } : null;
-  });
+    return sheet && { ...mapsFigure(sheet, explainedOf(session.read()).hand), name: "inward-by-hand" };
+  }, need("hand-tools", HTMLElement));
 }

@@ -8,6 +8,8 @@ import { percentText, shortName, typeset } from "../text/figures.js";
 import { mapWords, matchedText, unmatchedText, word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { make, need } from "./element.js";
+import { figureTools } from "./figure.js";
+import { mapRowFigure } from "./plates.js";
 import { fittedDecompositions, inOne } from "./several.js";
 import { paintOn } from "./surface.js";
 
@@ -103,6 +105,8 @@ export function showMatching(session) {
       { side: /** @type {const} */ ("a"), index: pair.index_a, row: pair.mapA, sign: 1 },
       { side: /** @type {const} */ ("b"), index: pair.index_b, row: pair.mapB, sign: Math.sign(pair.correlation) || 1 },
     ];
+    /** @type {Parameters<typeof mapRowFigure>[2]} */
+    const drawn = [];
     for (const { side, index, row: map, sign } of sides) {
       const decomposition = chosen(side);
       if (decomposition === undefined) continue;
@@ -120,11 +124,13 @@ export function showMatching(session) {
       cell.append(figure);
       const maps = await session.thumbnails(decomposition.id, [index], PAIR_RASTER);
       if (maps === null) continue;
-      const words = mapWords();
-      const paint = () => paintOn(canvas, false, (surface, around) => paintMapDisc(surface, { ...maps, raster: maps.measured[0], sign, words }, around));
+      const content = { ...maps, raster: maps.measured[0], sign, words: mapWords() };
+      drawn.push({ heading: caption.textContent ?? "", map: content });
+      const paint = () => paintOn(canvas, false, (surface, around) => paintMapDisc(surface, content, around));
       new ResizeObserver(paint).observe(canvas);
       matchMedia("(prefers-color-scheme: dark)").addEventListener("change", paint);
     }
+    figureTools(session, cell, () => mapRowFigure("inward-pair", word("match"), drawn));
   }
 
   /** Whether all maps are fitted. @param {Decomposition | undefined} one */

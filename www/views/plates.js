@@ -1,6 +1,6 @@
 /** The figures of one map, for the tools beside them and for whatever else leaves the page: what is in them, from its answer. */
 
-import { paintEquation, paintSlices, paintViews } from "../draw/plates.js";
+import { paintEquation, paintMapRow, paintSlices, paintViews } from "../draw/plates.js";
 import { leastOf } from "../draw/landscape.js";
 import { percentText, stretchText, typeset } from "../text/figures.js";
 import { beginning } from "../text/trust.js";
@@ -8,6 +8,7 @@ import { mapWords, scaleText, standpointText, symbolOf, word } from "../text/wor
 
 /** @import { HeadContent, Side, Standpoint } from "../draw/head.js" */
 /** @import { OtherKind, RegionMarks } from "../draw/region.js" */
+/** @import { MapContent } from "../draw/disc.js" */
 /** @import { FigureParts } from "./figure.js" */
 
 /** @typedef {SessionState["explained"]["hand"]} Hand */
@@ -152,4 +153,11 @@ export function slicesFigure({ figure }, landscape, hand = null) {
     least: 320,
     paint: (width, around, penAt) => paintSlices(width, around, penAt, { slices, scale, levels: landscape.levels.map(({ label }) => typeset(label)) }),
   };
+}
+
+/** Maps side by side, each on its own scale. @param {string} name @param {string} title @param {{ heading: string, map: MapContent }[]} maps @returns {FigureParts | null} */
+export function mapRowFigure(name, title, maps) {
+  if (maps.length === 0) return null;
+  const description = `${maps.map(({ heading }) => heading).join(", ")}. ${word("figure.own-scales")}`;
+  return { name, title, description, width: Math.min(4, maps.length) * 180, least: 260, paint: (width, around, penAt) => paintMapRow(width, around, penAt, maps) };
 }

@@ -150,7 +150,7 @@ export function showPopulations(session) {
         width: SAVED_WIDE,
         paint: withRule(trust.rule, paintOne),
       };
-    });
+    }, curves);
   tools("curve-tools", "inward-reference-populations", "populations.curves", paintCurves);
   tools("density-tools", "inward-eccentricity", "populations.density", paintDensity);
 

@@ -1,9 +1,11 @@
 /** The electrodes on a small head, without any map: to see at a glance whether axes and labels are right. */
 
 import { LEAST_WIDTH, paintHead } from "../draw/head.js";
+import { paintViews } from "../draw/plates.js";
 import { shortName } from "../text/figures.js";
 import { previewText, word } from "../text/words.js";
 import { need } from "./element.js";
+import { figureTools } from "./figure.js";
 import { keepPainted, paintOn } from "./surface.js";
 
 /** @import { Session } from "../session/session.js" */
@@ -42,26 +44,47 @@ function outermost(directions) {
   };
 }
 
+/** @param {InwardReport} preamble */
+function previewsOf(preamble) {
+  const directions = directionsOf(preamble);
+  const ends = outermost(directions);
+  const labels = Object.fromEntries(Object.entries(ends).map(([end, at]) => [end, shortName(preamble.electrodes[at].label)]));
+  return PREVIEWS.map(({ id, view, from, sides }) => ({
+    id,
+    alt: previewText(view, labels),
+    content: {
+      figure: { shells: [{ tissue: "scalp", radius: 1 }], electrodes: directions, dipole: null, axis: true },
+      electrodes: preamble.electrodes.map(({ label, used }) => ({ label, used, x: 0, y: 0 })),
+      pointed: -1,
+      named: [...new Set(Object.values(ends))],
+      from,
+      letters: sides.map((side) => ({ side, text: word(`map.${side}`) })),
+      seen: word(`view.${view}`),
+    },
+  }));
+}
+
 /** @param {Session} session */
 export function showPreview(session) {
-  return keepPainted(need("preview", HTMLElement), (printing) => {
+  const now = () => {
     const preamble = session.read().answer?.preamble;
-    if (preamble === undefined || preamble.electrodes.length === 0) return;
-    const directions = directionsOf(preamble);
-    const ends = outermost(directions);
-    const labels = Object.fromEntries(Object.entries(ends).map(([end, at]) => [end, shortName(preamble.electrodes[at].label)]));
-    for (const { id, view, from, sides } of PREVIEWS) {
+    return preamble === undefined || preamble.electrodes.length === 0 ? [] : previewsOf(preamble);
+  };
+  figureTools(session, need("preview-tools", HTMLElement), () => {
+    const views = now();
+    return views.length === 0 ? null : {
+      name: "inward-electrodes",
+      title: word("electrodes"),
+      description: views.map(({ alt }) => alt).join(" "),
+      width: 480,
+      least: 300,
+      paint: (width, around, penAt) => paintViews(width, around, penAt, { views: views.map(({ content }) => content), marks: [] }),
+    };
+  });
+  return keepPainted(need("preview", HTMLElement), (printing) => {
+    for (const { id, alt, content } of now()) {
       const canvas = need(id, HTMLCanvasElement);
-      canvas.setAttribute("aria-label", previewText(view, labels));
-      const content = {
-        figure: { shells: [{ tissue: "scalp", radius: 1 }], electrodes: directions, dipole: null, axis: true },
-        electrodes: preamble.electrodes.map(({ label, used }) => ({ label, used, x: 0, y: 0 })),
-        pointed: -1,
-        named: [...new Set(Object.values(ends))],
-        from,
-        letters: sides.map((side) => ({ side, text: word(`map.${side}`) })),
-        seen: word(`view.${view}`),
-      };
+      canvas.setAttribute("aria-label", alt);
       paintOn(canvas, printing, (surface, around) => paintHead(surface, content, around), LEAST_WIDTH);
     }
   });

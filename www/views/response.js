@@ -7,16 +7,18 @@ import { enteredNumber, enteredText, timeText, typeset } from "../text/figures.j
 import { mapWords, word } from "../text/words.js";
 import { make, need, rewrite } from "./element.js";
 import { figureTools, showFigure } from "./figure.js";
+import { mapRowFigure } from "./plates.js";
 import { writeRows } from "./rows.js";
 import { settingId } from "./setting.js";
 import { inOne } from "./several.js";
 import { keepPainted, paintOn } from "./surface.js";
-import { SAVED_VIEW, shellsOf, threeViews } from "./three_views.js";
+import { LEAST_VIEWS, SAVED_VIEWS, shellsOf, threeViews } from "./three_views.js";
 
 /** @import { Session } from "../session/session.js" */
 /** @import { CourseContent, CoursePlot } from "../draw/course.js" */
 
-const SAVED_WIDTH = 3 * SAVED_VIEW;
+/** Pixels across the raster of a map in a figure. */
+const INSTANT_RASTER = 64;
 
 /** How far keys go. @type {Record<string, number>} */
 const COURSE_STEPS = { ArrowLeft: -1, ArrowDown: -1, ArrowRight: 1, ArrowUp: 1, PageDown: -10, PageUp: 10, Home: -Infinity, End: Infinity };
@@ -370,7 +372,7 @@ export function showResponse(session) {
       field.setAttribute("aria-invalid", String(!good));
       status.textContent = good ? "" : `${word("fixed.invalid")} ${timeText(times[0], "")} – ${timeText(times[times.length - 1], course.unit)}`;
       if (!good) return;
-      const { index, along } = layOutCourse(SAVED_WIDTH, { times, plots: [] });
+      const { index, along } = layOutCourse(SAVED_VIEWS, { times, plots: [] });
       const nearest = index(along(entered));
       setSpan(k === 0 ? [nearest, span[1]] : [span[0], nearest]);
       fit();
@@ -398,9 +400,18 @@ export function showResponse(session) {
       name: "inward-response",
       title: word("response"),
       description: [course.sentence, need("response-readout", HTMLElement).textContent].join(" "),
-      width: SAVED_WIDTH,
+      width: SAVED_VIEWS,
+      least: LEAST_VIEWS,
       paint: (width, around, penAt) => three.save(width, around, penAt, paintCourse(width, around, penAt, shown) + 12),
     };
+  }, place);
+
+  figureTools(session, need("instants-tools", HTMLElement), async () => {
+    const instants = course?.instants ?? [];
+    const maps = await session.thumbnails(session.read().current, instants.map(({ index }) => index), INSTANT_RASTER);
+    if (maps === null) return null;
+    const drawn = instants.map(({ label }, at) => ({ heading: typeset(label), map: { ...maps, raster: maps.measured[at], sign: 1, words: mapWords() } }));
+    return mapRowFigure("inward-instants", word("response.maps"), drawn);
   });
 
   const askSoon = inOne(ask);

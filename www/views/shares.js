@@ -388,7 +388,7 @@ export function showShares(session) {
       width: SAVED.shares,
       paint: simulatedToo && rule !== undefined ? withRule(rule, paintSaved) : paintSaved,
     };
-  });
+  }, place);
   figureTools(session, need("information-tools", HTMLElement), () => ({
     name: "inward-information",
     title: word("information"),

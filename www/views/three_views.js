@@ -12,8 +12,9 @@ import { paintOn } from "./surface.js";
 /** @import { Surroundings } from "../draw/canvas.js" */
 /** @import { DipolesContent } from "../draw/dipoles.js" */
 
-/** CSS pixels of a view in a saved figure. */
-export const SAVED_VIEW = 250;
+/** CSS pixels of a saved figure, and of one that is still read. */
+export const SAVED_VIEWS = 750;
+export const LEAST_VIEWS = 320;
 const DIPOLE_REACH = { mouse: 12, touch: 22 };
 
 /** @typedef {Omit<DipolesContent, "from" | "letters" | "seen">} SeenDipoles */
