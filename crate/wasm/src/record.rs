@@ -1,6 +1,6 @@
 //! What was done in the words of a paper, and notes on single maps.
 
-use crate::wire::{misunderstood, plain, thrown};
+use crate::wire::{keys, part, plain, thrown};
 use crate::{Study, wire};
 use inward_core::Settings;
 use inward_core::report::Done;
@@ -20,9 +20,44 @@ impl Study {
     }
 }
 
+/// By hand: its own code for one small object would be larger.
 fn of(done: JsValue) -> Result<Done, JsValue> {
-    if done.is_undefined() {
-        return Ok(Done::default());
+    const KEYS: [&str; 14] = [
+        "region",
+        "populations",
+        "verdict",
+        "alternatives",
+        "influence",
+        "what_if",
+        "course",
+        "shares",
+        "groups",
+        "group_count",
+        "matches",
+        "threshold",
+        "decompositions",
+        "subjects",
+    ];
+    if let Some(key) = keys(&done).find(|key| !KEYS.contains(&key.as_str())) {
+        return Err(thrown(&Settings::unknown(format!("nothing of this kind belongs at `done.{key}`"))));
     }
-    serde_wasm_bindgen::from_value(done).map_err(|_| thrown(&Settings::unknown(misunderstood("done"))))
+    let flag = |name: &str| part(&done, name).is_truthy();
+    let number = |name: &str| part(&done, name).as_f64();
+    let count = |name: &str| number(name).unwrap_or(0.0) as usize;
+    Ok(Done {
+        region: flag("region"),
+        populations: flag("populations"),
+        verdict: flag("verdict"),
+        alternatives: flag("alternatives"),
+        influence: flag("influence"),
+        what_if: flag("what_if"),
+        course: flag("course"),
+        shares: flag("shares"),
+        groups: flag("groups"),
+        group_count: Some(count("group_count")).filter(|count| *count > 0),
+        matches: flag("matches"),
+        threshold: number("threshold"),
+        decompositions: count("decompositions"),
+        subjects: count("subjects"),
+    })
 }

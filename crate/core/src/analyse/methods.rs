@@ -22,6 +22,7 @@ impl Study {
                 skull: errors.skull_ratio,
                 sphere: errors.sphere.is_some(),
                 tissues: [HeadErrors::has_skull(&self.shells), self.has_fluid()],
+                spheres: self.other_spheres(),
                 pairs: self.pairs_are_tried(),
             },
             done,

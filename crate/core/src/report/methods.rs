@@ -1,20 +1,89 @@
 //! What was done, in the words of a paper: made of the settings, of what was found in the files and of what is said to have
 //! been done beyond the fit, with the sources that these words cite.
 
-use super::messages::{axes_words, listed};
+use super::messages::{axes_words, clipped, listed};
 use super::number::{given, significant, tenths};
 use super::sheet::{Written, capitalised, head_title};
-use super::summary::{FEWEST_SUBJECTS, Questions};
-use super::trust::{drawn_errors, drawn_noise, sources};
-use super::{
-    HeadReport, LEAST_APART_MM, MIRRORED_PART, MOST_OPPOSED, NoiseSettings, PREFERRED_SHARE, Polarity, Report,
-};
-use crate::assess::CANONICAL_RADIUS_MM;
-use crate::finding::{Code, Value};
+use super::summary::FEWEST_SUBJECTS;
+use super::trust::{drawn_errors, drawn_noise, source_words};
+use super::{NoiseSettings, Polarity, Report, Settings};
+use crate::finding::Value;
 use crate::map::MapUnit;
 use crate::placement::{AxesFound, Evidence};
-use crate::understand::{ColumnsAre, Role};
+use crate::understand::{ColumnsAre, Moments, Role};
 use serde::{Deserialize, Serialize};
+
+/// The paragraph. `{name}` stands for a value, `[name:…]` is left out where that value is empty, `[!name:…]` where it is not;
+/// notes are values by their codes.
+const PARAGRAPH: &str = "\
+A single equivalent current dipole was fitted to [one:one ][!one:each of {maps} ]\
+[components:component map][time-points:time point][repeats:repeat][unrelated:map][!one:s]\
+[time-points: of a response][repeats: of a map][span: ({span})] in a spherical head model with Inward \
+(version {version}[build:, build {build}]).\
+[unfitted: {unfitted} could not be fitted, being constant or lacking values.]\
+[several: {several}[subjects: from {subjects}] were analysed; the numbers of maps and electrodes are those of one of them.]\
+[unmixing-inverted: Maps were the columns of the pseudo-inverse of the unmixing matrix[sphering: times the sphering matrix].]\
+[baseline: The mean from {baseline} was subtracted at each electrode.]\
+[course: Global field power was the root mean square (rms) of the average-referenced map (Lehmann & Skrandies 1980).] \
+Of {placed} electrodes with a position and a value, [all:all][!all:{used}] were used\
+[excluded:; left out by hand: {excluded}][interpolated:; left out as interpolated: {interpolated}][channels-bad:; left out as declared bad: {channels-bad}].\
+[not-scalp: Channels off the scalp had no part ({not-scalp}).]\
+[values-without-position: Channels without a position had no part ({values-without-position}).] \
+Maps and lead field were referred to the average of the electrodes used\
+[reference-named: (recording reference by the labels: {reference-named})]\
+[reference-channel: (recording reference, zero in every map and kept: {reference-channel})].\
+[unit-sphere-scaled: {unit-sphere-scaled}]\
+[standard-positions: Electrode positions were not measured but the standard ones of the labels (idealised 10-5 system; names: Oostenveld & Praamstra 2001), on a sphere of radius {radius} mm.]\
+[measured: A sphere was [sphere-set:set by hand][!sphere-set:fitted to the electrode positions given[centre-set:, its centre set by hand][radius-set:, its radius set by hand]] \
+(radius {radius} mm; electrodes off it by {off} mm rms, {farthest} mm at most), onto which electrodes were projected along its radius.]\
+[axes-set: The axes of the positions were set by hand ({axes-set}).]\
+[landmarks: The axes of the head were taken from the points at ears and nose.]\
+[misfit: The axes of the head were found by rotating electrodes with standard names onto their standard places (Kabsch 1976; misfit {misfit}° rms).]\
+[axes-assumed: The axes of the positions were assumed (x to the right, y to the front, z up).]\
+[mirror: Left and right of the positions were exchanged.]\
+[mirrored: By their labels the positions are the mirror image of a head; they were kept as given.] \
+The head was [shells:modelled by {shells} concentric shells ({tissues}) with outer radii of {radii} mm and conductivities of {conductivities} S/m]\
+[!shells:one homogeneous sphere of radius {radii} mm and conductivity {conductivities} S/m] ({source}).\
+[unusual-head: It was declared unusual (infant, defect of the skull or craniotomy); concentric shells may not hold for it.] \
+Potentials were computed by the infinite series for a layered sphere (de Munck & Peters 1993; Zhang 1995)\
+[images:, evaluated by {images} (after Berg & Scherg 1994) with an error of at most 3·10⁻⁹ of the largest value on the scalp]. \
+Residual variance (RV), the squared norm of the map less the dipole's map over that of the map, was minimised over all positions within 0.98 of the innermost radius, \
+the moment being eliminated by variable projection (Golub & Pereyra 1973): about 1,600 positions gave up to five separate starts, which Newton steps with exact derivatives refined; the boundary was an active constraint. \
+Adjusted RV was RV · (N − 1)/(N − 7), with N = {used} electrodes and {free} degrees of freedom after reference, position and moment. \
+The sign of a map was taken as [declared:meaningful and its moment as a direction][!declared:arbitrary and its moment as an axis][flips:, with {flips} turned]. \
+[unit:Maps were in {unit} and moments in nAm][!unit:The unit of the maps was not known and moments were relative]\
+[activations:, for {activations} times the standard deviation of the activation].\
+[region: The region of uncertainty is the ellipsoid about the fitted position that held 95 % of {draws} refits: the fitted dipole was seen through heads {drawn}, and fitted again in the head as modelled.\
+[repeats: The scatter of the repeats' positions was computed too.] \
+The profile region for independent noise (Bates & Watts 1988) and Moran's I of the residual (Moran 1950; Cliff & Ord 1981) were computed for comparison.]\
+[simulated: Reference populations were {simulated} maps of each kind – [populations:independent noise, one, two, five, twenty][!populations:one, two] and a hundred dipoles – simulated for the same electrodes and head (seed {seed}; O'Neill 2014) and fitted likewise. \
+Their sources were {sources}, of equal moments; single dipoles were seen through an imperfect head – {errors} – with {share} % of {noise}.]\
+[verdict: The verdict on a map was the first that held of lone electrode (one channel with over {lone} % of its power), \
+[paired:paired (a mirrored pair preferred, see below), ]edge (position on the boundary), below the brain (position under the floor of the simulated sources), \
+not dipolar (more left over than with {ruled-out} % of simulated single dipoles, both of all and of those at about its depth), \
+dipolar (more left over than with at most {one-dipole} % of them and than with at most {others} % of simulated pairs and of mixtures of a hundred\
+[two-free:, and two free dipoles not preferred]), else undecided. These limits are conventions.]\
+[alternatives: Other explanations of a map – the best minimum elsewhere[both:, a mirrored pair of dipoles and two free dipoles]\
+[!both:[mirrored-pair: and a mirrored pair of dipoles][free-pair: and two free dipoles]] – were held against single dipoles by a parametric bootstrap (Efron & Tibshirani 1993; sequential, Besag & Clifford 1991): \
+the fitted dipole was seen through up to {draws} heads [region:drawn as for the region][!region:{drawn}], and explained in the same ways.\
+[pairs: Pairs were refined by Levenberg–Marquardt steps with the moments eliminated (Marquardt 1963; Kaufman 1975) and preferred if at most 2 % of simulated single dipoles gained as much – \
+the fall of RV over the RV of the pair plus what errors of the head alone leave[both:; a mirrored pair also with at least 0.8 of the gain of two free dipoles]. \
+Pairs under 20 mm apart, or whose two maps were over 4 times as long as their sum, were refused.]]\
+[influence: Each electrode was left out in turn and the map fitted again.]\
+[what-if: Maps were fitted again with [skull:brain-to-skull ratios of 15, 20, 25, 40 and 80, ]electrodes misplaced by 2 and 5 mm (rms of 20 draws), \
+[upper:a sphere of the upper 65 % of the electrodes, ][centre:a centre off by its standard error, ]a sphere 5 % larger and smaller[fluid:, and brain in place of cerebrospinal fluid].]\
+[shares: The near-dipolar share is the part of the fitted maps with an RV of at most {shares} %\
+[mean:, averaged over the subjects of decompositions of one name][intervals:; from five subjects on, 95 % intervals came from 4,000 draws of subjects (expanded percentiles, Hesterberg 2015; O'Neill 2014)].]\
+[matches: Maps of two decompositions were matched one to one by the largest sum of |r| over the electrodes of both (Jonker & Volgenant 1987; Crouse 2016).]\
+[groups: Equivalent dipoles of several people, brought to one head of radius 88 mm, were grouped by Ward's hierarchy (Ward 1963) of the squared distance of places plus (30 mm)² sin² of the angle between axes, \
+into [group-count:{group-count} as chosen by hand][!group-count:as many groups as made the mean silhouette largest (Rousseeuw 1987)].] \
+Positions are equivalent positions in a spherical model; the published error of such models is about 10 mm (Cuffin et al. 2001).";
+
+/// Heads and noise of refits.
+const DRAWN: &str = "\
+drawn anew (seed {errors-seed}; O'Neill 2014) – {errors} –, with {noise}[where: ({sources})] \
+[noise-sd:of standard deviation {noise-sd} at each electrode[trials: (an average of {trials})]]\
+[!noise-sd:so strong that it explains, with the error of the head, what the fit left over]";
 
 /// What was done beyond the fits.
 #[derive(Clone, Debug, Default, PartialEq, Deserialize)]
@@ -80,6 +149,8 @@ pub struct Facts<'a> {
     pub sphere: bool,
     /// Whether the head has a skull and cerebrospinal fluid that can be otherwise.
     pub tissues: [bool; 2],
+    /// Whether there are a sphere of the upper electrodes and a standard error of the centre.
+    pub spheres: [bool; 2],
     /// Whether mirrored and free pairs can be tried.
     pub pairs: [bool; 2],
 }
@@ -127,438 +198,244 @@ fn citation(source: &str) -> String {
     }
 }
 
+/// A template with its values.
+fn filled(template: &str, values: &[(&str, String)]) -> String {
+    let value = |name: &str| values.iter().find(|(known, _)| *known == name).map_or("", |(_, value)| value.as_str());
+    let mut text = String::new();
+    // Blocks that are open within one that is left out, itself included.
+    let mut hidden = 0;
+    let mut rest = template;
+    while let Some(at) = rest.find(['[', ']', '{']) {
+        let (before, mark) = rest.split_at(at);
+        if hidden == 0 {
+            text.push_str(before);
+        }
+        rest = &mark[1..];
+        match mark.as_bytes()[0] {
+            b'[' => {
+                let (name, inside) = rest.split_once(':').unwrap_or_default();
+                let shown =
+                    name.strip_prefix('!').map_or_else(|| !value(name).is_empty(), |name| value(name).is_empty());
+                if hidden > 0 || !shown {
+                    hidden += 1;
+                }
+                rest = inside;
+            }
+            b'{' => {
+                let (name, after) = rest.split_once('}').unwrap_or_default();
+                if hidden == 0 {
+                    text.push_str(value(name));
+                }
+                rest = after;
+            }
+            _ if hidden > 0 => hidden -= 1,
+            _ => {}
+        }
+    }
+    text + rest
+}
+
 impl Methods {
     /// From what was done.
     pub fn new(facts: &Facts, done: &Done) -> Self {
-        let steps = [
-            maps(facts, done),
-            electrodes(facts),
-            sphere(facts),
-            head(&facts.report.head),
-            forward_and_fit(facts),
-            region(facts, done),
-            populations(facts, done),
-            verdict(facts, done),
-            explanations(facts, done),
-            stability(facts, done),
-            several(done),
-        ];
-        let paragraph = steps.concat().join(" ");
+        let mut values = Values::default();
+        of_maps(&mut values, facts, done);
+        of_electrodes(&mut values, facts);
+        of_fit(&mut values, facts);
+        of_trust(&mut values, facts, done);
+        let paragraph = filled(PARAGRAPH, &values.0);
         let references = SOURCES.into_iter().filter(|source| paragraph.contains(&citation(source))).collect();
         Self { paragraph, references }
     }
 }
 
-fn maps(facts: &Facts, done: &Done) -> Vec<String> {
-    let Report { program, settings, understood, .. } = facts.report;
-    let [one, many] = match understood.columns_are {
-        ColumnsAre::Components => ["component map", "component maps"],
-        ColumnsAre::TimePoints => ["time point of a response", "time points of a response"],
-        ColumnsAre::Repeats => ["repeat of a map", "repeats of a map"],
-        ColumnsAre::Unrelated => ["map", "maps"],
-    };
-    let to = if facts.maps == 1 { format!("one {one}") } else { format!("each of {} {many}", number(facts.maps)) };
-    let build = program.build.map_or_else(String::new, |build| format!(", build {build}"));
-    let mut told = vec![format!(
-        "A single equivalent current dipole was fitted to {to} in a spherical head model with {} (version {}{build}).",
-        program.name, program.version
-    )];
-    if facts.unfitted > 0 {
-        let had = if facts.unfitted == 1 {
-            "map was constant or lacked a value and was"
-        } else {
-            "maps were constant or lacked values and were"
+/// What templates are filled with.
+#[derive(Default)]
+struct Values(Vec<(&'static str, String)>);
+
+impl Values {
+    #[inline(never)]
+    fn set(&mut self, name: &'static str, value: String) {
+        self.0.push((name, value));
+    }
+
+    /// A value that is there or not.
+    fn flag(&mut self, name: &'static str, is: bool) {
+        if is {
+            self.set(name, name.to_owned());
+        }
+    }
+
+    /// A number unless it is none.
+    #[inline(never)]
+    fn count(&mut self, name: &'static str, count: usize, noun: &str) {
+        if count > 0 {
+            self.set(name, counted(count, noun));
+        }
+    }
+}
+
+fn of_maps(values: &mut Values, facts: &Facts, done: &Done) {
+    let Report { program, settings, understood, notes, .. } = facts.report;
+    for note in notes {
+        let named = note.values.get("labels").or(note.values.get("reference"));
+        let told = match named {
+            Some(Value::List(labels)) => listed(labels),
+            Some(Value::Text(label)) => clipped(label),
+            _ => note.message.clone(),
         };
-        told.push(format!("{} {had} not fitted.", capitalised(&number(facts.unfitted))));
+        values.set(note.code.as_str(), told);
+    }
+    values.flag(understood.columns_are.name(), true);
+    values.set("maps", number(facts.maps));
+    values.set("version", program.version.to_owned());
+    values.set("build", program.build.unwrap_or_default().to_owned());
+    if facts.unfitted > 0 {
+        values.set("unfitted", capitalised(&counted(facts.unfitted, "map")));
     }
     if done.decompositions > 1 {
-        let from =
-            if done.subjects > 0 { format!(" from {}", counted(done.subjects, "subject")) } else { String::new() };
-        told.push(format!(
-            "{}{from} were analysed; numbers of maps and electrodes are given for one of them.",
-            capitalised(&counted(done.decompositions, "decomposition"))
-        ));
+        values.set("several", capitalised(&counted(done.decompositions, "decomposition")));
     }
-    if has(facts, Code::UnmixingInverted) {
-        let sphered = understood.files.iter().any(|file| file.role == Role::Sphering);
-        let sphered = if sphered { ", multiplied by its sphering matrix" } else { "" };
-        told.push(format!("Maps were the columns of the pseudo-inverse of the unmixing matrix{sphered}."));
-    }
-    if let Some(window) = settings.baseline.filter(|_| has(facts, Code::BaselineSubtracted)) {
-        let unit = understood.times.as_ref().map_or("", |times| times.unit);
-        told.push(format!(
-            "The mean from {} to {} {unit} was subtracted at each electrode.",
-            signed(window.from),
-            signed(window.to)
-        ));
-    }
-    if done.course && understood.columns_are == ColumnsAre::TimePoints {
-        told.push("Global field power was the root mean square over the electrodes of the average-referenced map (Lehmann & Skrandies 1980).".into());
-    }
-    told
-}
-
-fn electrodes(facts: &Facts) -> Vec<String> {
-    let Report { electrodes, understood, .. } = facts.report;
-    let labels = &understood.labels;
-    let used = electrodes.iter().filter(|electrode| electrode.used).count();
-    let reasons =
-        [(Code::Excluded, "by hand"), (Code::Interpolated, "interpolated"), (Code::ChannelsBad, "declared bad")];
-    let left_out =
-        reasons.iter().filter_map(|(code, why)| Some(format!("{} ({why})", listed(labels_of(facts, *code)?))));
-    let left_out: Vec<String> = left_out.collect();
-    let mut told = vec![match electrodes.len() - used {
-        0 => format!("All {used} electrodes with a position and a value were used."),
-        one => format!(
-            "Of {} electrodes with a position and a value, {used} were used; left out {} {}.",
-            electrodes.len(),
-            if one == 1 { "was" } else { "were" },
-            series(&left_out)
-        ),
-    }];
-    let apart = [
-        (labels.not_scalp.len(), "channel", "off the scalp"),
-        (labels.without_position.len(), "channel", "without a position"),
-    ];
-    let apart =
-        apart.iter().filter(|one| one.0 > 0).map(|(count, noun, what)| format!("{} {what}", counted(*count, noun)));
-    let apart: Vec<String> = apart.collect();
-    if !apart.is_empty() {
-        told.push(format!("{} had no part in the fits.", capitalised(&series(&apart))));
-    }
-    let named = match &labels.reference {
-        Some(reference) => format!("; the labels of the channels name {reference} as the recording reference"),
-        None => String::new(),
-    };
-    let kept = match labels_of(facts, Code::ReferenceChannel) {
-        Some(labels) => {
-            format!("; {}, zero in every map, was taken as the recording reference and kept", listed(labels))
+    values.count("subjects", done.subjects, "subject");
+    if let Some(Moments { times, unit, .. }) = &understood.times {
+        let window = settings.baseline.map(|window| [window.from, window.to]);
+        let span = times.first().zip(times.last()).map(|(first, last)| [*first, *last]);
+        for (name, ends) in [("baseline", window), ("span", span)] {
+            if let Some([from, to]) = ends {
+                values.set(name, format!("{} to {} {unit}", given(from), given(to)).replace('-', "−"));
+            }
         }
-        None => String::new(),
-    };
-    told.push(format!("Maps and lead field were referred to the average of the electrodes used{named}{kept}."));
-    told
+    }
 }
 
-fn sphere(facts: &Facts) -> Vec<String> {
-    let Report { head, .. } = facts.report;
-    let radius = tenths(head.radius_mm);
-    let mut told = Vec::new();
-    if !facts.measured && has(facts, Code::UnitSphereScaled) {
-        told.push(format!("Electrode positions were given as directions and put on a sphere of radius {radius} mm."));
-    } else if !facts.measured {
-        told.push(format!(
-            "Electrode positions were not measured: idealised positions of the 10-5 system (names: Oostenveld & Praamstra 2001) were taken by the labels, on a sphere of radius {radius} mm."
-        ));
-    } else {
-        let by = match (head.centre_is_fitted, head.radius_is_fitted) {
-            (true, true) => "was fitted to the electrode positions given",
-            (true, false) => "was centred by a fit to the electrode positions given, its radius set by hand",
-            (false, true) => "had its radius from a fit to the electrode positions given, its centre set by hand",
-            (false, false) => "had its centre and radius set by hand",
-        };
-        told.push(format!(
-            "The sphere of the scalp {by} (radius {radius} mm; electrodes off it by {} mm, root mean square, and {} mm at most); electrodes were projected onto it along its radius.",
-            tenths(head.fit_rms_mm),
-            tenths(head.fit_max_mm)
-        ));
+fn of_electrodes(values: &mut Values, facts: &Facts) {
+    let Report { head, electrodes, .. } = facts.report;
+    let used = electrodes.iter().filter(|electrode| electrode.used).count();
+    for (name, count) in [("placed", electrodes.len()), ("used", used), ("free", used - 7)] {
+        values.set(name, count.to_string());
+    }
+    values.flag("all", used == electrodes.len());
+    for (name, mm) in [("radius", head.radius_mm), ("off", head.fit_rms_mm), ("farthest", head.fit_max_mm)] {
+        values.set(name, tenths(mm));
     }
     let axes = facts.axes;
-    told.extend(match axes.evidence {
-        Evidence::Standard => None,
-        Evidence::Setting => {
-            let name = axes.name.map(|name| name.to_string()).unwrap_or_default();
-            Some(format!("The axes of the positions were set by hand ({}).", axes_words(&name)))
-        }
-        Evidence::Landmarks => Some("The axes of the head were taken from the points at both ears and the nose.".into()),
-        Evidence::Labels => Some(format!(
-            "The axes of the head were found by rotating the electrodes with standard names onto their standard places (Kabsch 1976; {}° left, root mean square).",
-            significant(axes.misfit_degrees.unwrap_or_default(), 2)
-        )),
-        Evidence::Nothing => Some("Nothing told the axes of the positions: x to the right, y to the front and z up were assumed.".into()),
-    });
-    match (facts.report.settings.mirror, axes.mirrored) {
-        (Some(true), _) => told.push("Left and right of the positions were exchanged.".into()),
-        (_, true) => told.push(
-            "By their labels the electrodes were a mirror image of the head; positions were kept as given.".into(),
-        ),
+    match (axes.evidence, axes.name, axes.misfit_degrees) {
+        (Evidence::Setting, Some(name), _) => values.set("axes-set", axes_words(&name.to_string())),
+        (Evidence::Labels, _, Some(misfit)) => values.set("misfit", significant(misfit, 2)),
         _ => {}
     }
-    told
 }
 
-fn head(head: &HeadReport) -> Vec<String> {
-    let (_, source) = head_title(head);
-    let source = match head.name {
-        Some(_) => source.replacen("Radii", "radii", 1),
-        None => "set by hand".into(),
-    };
-    let all = |what: fn(&crate::head::Shell) -> String| series(&head.shells.iter().map(what).collect::<Vec<_>>());
-    let (radii, conductivities) =
-        (all(|shell| tenths(shell.outer_radius_mm)), all(|shell| given(shell.conductivity_s_per_m)));
-    let mut told = vec![match head.shells.len() {
-        1 => format!(
-            "The head was one homogeneous sphere of radius {radii} mm and conductivity {conductivities} S/m ({source})."
-        ),
-        count => format!(
-            "The head was modelled by {} concentric shells, {}, with outer radii of {radii} mm and conductivities of {conductivities} S/m ({source}).",
-            number(count),
-            all(|shell| shell.tissue.clone())
-        ),
-    }];
-    if head.unusual {
-        told.push("The head was declared unusual (an infant's, or one with a defect of the skull or a craniotomy), for which concentric shells may not hold.".into());
+fn of_fit(values: &mut Values, facts: &Facts) {
+    let Report { settings, head, .. } = facts.report;
+    let mut columns: [Vec<String>; 3] = Default::default();
+    for shell in &head.shells {
+        columns[0].push(clipped(&shell.tissue));
+        columns[1].push(tenths(shell.outer_radius_mm));
+        columns[2].push(given(shell.conductivity_s_per_m));
     }
-    told
-}
-
-fn forward_and_fit(facts: &Facts) -> Vec<String> {
-    let Report { settings, electrodes, .. } = facts.report;
-    let used = electrodes.iter().filter(|electrode| electrode.used).count();
-    let images = match facts.images {
-        Some(count) => format!(
-            ", evaluated by {} (after Berg & Scherg 1994) with an error of at most 3·10⁻⁹ of the largest value on the scalp",
-            counted(count, "image source")
-        ),
-        None => String::new(),
-    };
-    let turned = match settings.flip.len() {
-        0 => String::new(),
-        count => format!(
-            "; {} turned",
-            if count == 1 { "that of one map was".into() } else { format!("those of {} maps were", number(count)) }
-        ),
-    };
-    let sign = match settings.polarity {
-        Polarity::Arbitrary => "The sign of a map was taken as arbitrary and its moment as an axis",
-        Polarity::Declared => "The sign of a map was taken as meaningful and its moment as a direction",
-    };
-    let unit = match settings.map_unit {
-        MapUnit::Microvolt => "Maps were given in µV and moments in nAm",
-        MapUnit::Volt => "Maps were given in V and moments in nAm",
-        MapUnit::Relative => "The unit of the maps was not known, so that moments were relative",
-    };
-    let activations = settings.activation_sd.iter().flatten().count();
-    let activation = match activations {
-        0 => String::new(),
-        all if all == facts.maps => "; they were multiplied by the standard deviation of the map's activation".into(),
-        some => format!(
-            "; those of {} were multiplied by the standard deviation of the map's activation",
-            counted(some, "map")
-        ),
-    };
-    vec![
-        format!("Potentials were those of the infinite series for layered spheres (de Munck & Peters 1993; Zhang 1995){images}."),
-        "Residual variance (RV), the squared norm of the difference between the map and the dipole's map over that of the map, was minimised over all positions within 0.98 of the innermost radius. The moment was eliminated (variable projection; Golub & Pereyra 1973), about 1,600 positions gave up to five separate starts, and Newton steps with exact derivatives refined them; the boundary was an active constraint.".into(),
-        format!(
-            "Beside RV stands the adjusted RV, [RSS/(N − 7)] / [TSS/(N − 1)], with N = {used} electrodes and {} degrees of freedom (seven parameters: the reference, three of position and three of moment).",
-            used - 7
-        ),
-        format!("{sign}{turned}."),
-        format!("{unit}{activation}."),
-    ]
-}
-
-fn region(facts: &Facts, done: &Done) -> Vec<String> {
-    if !done.region {
-        return Vec::new();
+    for (name, column) in ["tissues", "radii", "conductivities"].into_iter().zip(&columns) {
+        values.set(name, series(column));
     }
-    let settings = &facts.report.settings;
-    let unit = Written::of(settings.map_unit);
-    let strong = match &settings.noise {
-        None => "so strong as to explain, together with the error of the head, what the fit had left over".to_owned(),
-        Some(known) => {
-            let from = match known {
-                NoiseSettings::Sd { .. } => String::new(),
-                NoiseSettings::Trials { trials, .. } => format!(" (an average of {trials} trials)"),
-            };
-            format!(
-                "of standard deviation {} {} at each electrode{from}",
-                significant(unit.factor * known.sd(), 2),
-                unit.name
-            )
-        }
-    };
-    vec![
-        format!(
-            "The region of uncertainty comes from {} refits (seed {}): in each the fitted dipole was seen through a head drawn anew – {} –, with {} added, {strong}, and fitted again in the head as modelled. The region is the ellipsoid about the fitted position that held 95 % of the refits.",
-            settings.errors.draws,
-            settings.errors.seed,
-            imperfect(facts),
-            drawn_noise(&settings.errors),
-        ),
-        "For comparison, the profile region for independent noise was computed (Bates & Watts 1988), and Moran's I of the residual (Moran 1950; Cliff & Ord 1981).".into(),
-    ]
+    if head.shells.len() > 1 {
+        values.set("shells", number(head.shells.len()));
+    }
+    values.set(
+        "source",
+        match head.name {
+            Some(_) => head_title(head).1.replacen("Radii", "radii", 1),
+            None => "set by hand".into(),
+        },
+    );
+    if settings.map_unit != MapUnit::Relative {
+        values.set("unit", if settings.map_unit == MapUnit::Volt { "V" } else { "µV" }.into());
+    }
+    values.count("images", facts.images.unwrap_or(0), "image source");
+    values.count("flips", settings.flip.len(), "sign");
+    values.count("activations", settings.activation_sd.iter().flatten().count(), "map");
 }
 
-fn populations(facts: &Facts, done: &Done) -> Vec<String> {
-    if !(done.populations || done.verdict) {
-        return Vec::new();
-    }
-    let kinds = match done.populations {
-        true => "independent noise and of one, two, five, twenty and a hundred dipoles",
-        false => "one, two and a hundred dipoles",
-    };
-    let settings = &facts.report.settings;
-    vec![
-        format!(
-            "Reference populations were {} simulated maps each of {kinds} (seed {}; random numbers: O'Neill 2014), for the same electrodes and head and fitted in the same way.",
-            number(settings.sources.draws),
-            settings.sources.seed
-        ),
-        format!(
-            "Their sources were {}. Simulated single dipoles were seen through an imperfect head – {} –, {} % of their power being {}.",
-            sources(&settings.sources).replace('-', "−"),
-            imperfect(facts),
-            share(settings.sources.noise),
-            drawn_noise(&settings.errors)
-        ),
-    ]
-}
-
-fn verdict(facts: &Facts, done: &Done) -> Vec<String> {
-    if !done.verdict {
-        return Vec::new();
-    }
-    let limits = &facts.report.settings.limits;
-    let (paired, two) = match done.alternatives {
-        true => ("paired if a mirrored pair was preferred (see below), ", ", and two free dipoles were not preferred"),
-        false => ("", ""),
-    };
-    vec![format!(
-        "A map was called, by the first of these that held, lone electrode if one channel had more than {} % of its power, {paired}edge if the position lay on the boundary, below the brain if it lay under the floor of the simulated sources, not dipolar if more than {} % of simulated single dipoles left less over (both of all and of those at about its depth), dipolar if at most {} % of them did, at most {others} % of simulated pairs and at most {others} % of mixtures of a hundred dipoles{two}, and otherwise undecided. These limits are conventions.",
-        share(limits.lone_electrode),
-        share(limits.ruled_out),
-        share(limits.one_dipole),
-        others = share(limits.others)
-    )]
-}
-
-fn explanations(facts: &Facts, done: &Done) -> Vec<String> {
-    if !done.alternatives {
-        return Vec::new();
-    }
+fn of_trust(values: &mut Values, facts: &Facts, done: &Done) {
+    let Report { settings, head, understood, .. } = facts.report;
+    let Settings { errors, sources, limits, .. } = settings;
+    let simulated = done.populations || done.verdict;
     let [mirrored, free] = facts.pairs;
-    let tried = [
-        Some("the best minimum elsewhere"),
-        mirrored.then_some("a pair of dipoles at mirrored places"),
-        free.then_some("two free dipoles"),
-    ];
-    let tried: Vec<String> = tried.into_iter().flatten().map(str::to_owned).collect();
-    let mut told = vec![format!(
-        "Other explanations of a map – {} – were held against single dipoles by a parametric bootstrap (Efron & Tibshirani 1993; sequential, Besag & Clifford 1991): the fitted dipole was seen through up to {} heads and with noise, both drawn as {}, and explained in the same ways.",
-        series(&tried),
-        facts.report.settings.errors.draws,
-        match done.region {
-            true => "for the region".to_owned(),
-            false => format!("follows: {}; {}", imperfect(facts), drawn_noise(&facts.report.settings.errors)),
+    for (name, is) in [
+        ("one", facts.maps == 1),
+        ("sphering", understood.files.iter().any(|file| file.role == Role::Sphering)),
+        ("course", done.course && understood.columns_are == ColumnsAre::TimePoints),
+        ("measured", facts.measured),
+        ("centre-set", !head.centre_is_fitted),
+        ("radius-set", !head.radius_is_fitted),
+        ("sphere-set", !head.centre_is_fitted && !head.radius_is_fitted),
+        ("landmarks", facts.axes.evidence == Evidence::Landmarks),
+        ("mirror", settings.mirror == Some(true)),
+        ("mirrored", facts.axes.mirrored && settings.mirror == Some(false)),
+        ("declared", settings.polarity == Polarity::Declared),
+        ("region", done.region),
+        ("populations", done.populations),
+        ("verdict", done.verdict),
+        ("alternatives", done.alternatives),
+        ("influence", done.influence),
+        ("what-if", done.what_if),
+        ("skull", facts.tissues[0]),
+        ("fluid", facts.tissues[1]),
+        ("upper", facts.spheres[0]),
+        ("centre", facts.spheres[1]),
+        ("mirrored-pair", mirrored),
+        ("free-pair", free),
+        ("pairs", mirrored || free),
+        ("both", mirrored && free),
+        ("paired", done.alternatives && mirrored),
+        ("two-free", done.alternatives && free),
+        // Where simulated sources lie is told once.
+        ("where", errors.background_sources > 0 && !simulated),
+        ("mean", done.subjects > 1),
+        ("intervals", done.subjects >= FEWEST_SUBJECTS),
+        ("matches", done.matches),
+        ("groups", done.groups),
+    ] {
+        values.flag(name, is);
+    }
+    for (name, share) in [
+        ("share", sources.noise),
+        ("lone", limits.lone_electrode),
+        ("ruled-out", limits.ruled_out),
+        ("one-dipole", limits.one_dipole),
+        ("others", limits.others),
+    ] {
+        values.set(name, percentage(share));
+    }
+    if simulated {
+        values.set("simulated", number(sources.draws));
+    }
+    values.set("draws", number(errors.draws));
+    values.set("seed", sources.seed.to_string());
+    values.set("errors-seed", errors.seed.to_string());
+    values.set("sources", source_words(sources));
+    values.set("errors", drawn_errors(errors, facts.skull, facts.sphere));
+    values.set("noise", drawn_noise(errors));
+    if let Some(noise) = &settings.noise {
+        let unit = Written::of(settings.map_unit);
+        values.set("noise-sd", format!("{} {}", significant(unit.factor * noise.sd(), 2), unit.name));
+        if let NoiseSettings::Trials { trials, .. } = noise {
+            values.count("trials", *trials, "trial");
         }
-    )];
-    if mirrored || free {
-        let part = match facts.pairs {
-            [true, true] => format!(
-                ", and a mirrored pair only with at least {} of the gain of two free dipoles",
-                given(MIRRORED_PART)
-            ),
-            _ => String::new(),
-        };
-        told.push(format!(
-            "Pairs were refined by Levenberg–Marquardt steps with the moments eliminated (Marquardt 1963; Kaufman 1975) and preferred if at most {} % of simulated single dipoles gained as much{part}. The gain was the fall of RV over the RV of the pair and that which errors of the head alone leave. Pairs under {} mm apart, or whose two maps together were over {} times as long as their sum, were refused.",
-            share(PREFERRED_SHARE),
-            given(LEAST_APART_MM),
-            given(MOST_OPPOSED)
-        ));
     }
-    told
-}
-
-fn stability(facts: &Facts, done: &Done) -> Vec<String> {
-    let mut told = Vec::new();
-    if done.influence {
-        told.push("Each electrode was left out in turn and the map fitted again from its best two minima.".into());
-    }
-    if done.what_if {
-        let [skull, fluid] = facts.tissues;
-        let head = &facts.report.head;
-        let changes = [
-            skull.then_some("a brain-to-skull ratio of conductivities of 15, 20, 25, 40 and 80"),
-            Some("electrodes misplaced by 2 and 5 mm (root mean square of 20 draws)"),
-            (head.centre_is_fitted && head.radius_is_fitted)
-                .then_some("the sphere of the upper 65 % of the electrodes; a centre off by its standard error"),
-            Some("a sphere 5 % larger and smaller"),
-            fluid.then_some("brain in place of cerebrospinal fluid"),
-        ];
-        let changes: Vec<String> = changes.into_iter().flatten().map(str::to_owned).collect();
-        told.push(format!("Maps were fitted again in other heads: {}.", changes.join("; ")));
-    }
-    told
-}
-
-fn several(done: &Done) -> Vec<String> {
-    let mut told = Vec::new();
+    let drawn = filled(DRAWN, &values.0);
+    values.set("drawn", drawn);
     if done.shares {
-        let usual = Questions::default();
-        let at = match done.threshold {
-            Some(threshold) => share(threshold),
-            None => series(&usual.at.iter().map(|at| share(*at)).collect::<Vec<_>>()),
-        };
-        told.push(format!("The near-dipolar share was the part of the fitted maps with an RV of at most {at} %."));
-        if done.subjects > 1 {
-            told.push("Shares of decompositions of one name were averaged over their subjects.".into());
-        }
-        if done.subjects >= FEWEST_SUBJECTS {
-            told.push(format!(
-                "Where these were {} or more, 95 % intervals came from drawing subjects anew {} times (percentiles expanded for few subjects, Hesterberg 2015; random numbers: O'Neill 2014).",
-                number(FEWEST_SUBJECTS),
-                number(usual.draws)
-            ));
-        }
+        values.set("shares", done.threshold.map_or_else(|| USUAL_SHARES.into(), percentage));
     }
-    if done.matches {
-        told.push("Maps of two decompositions were matched one to one so that the sum of |r| was largest, r being their correlation over the electrodes of both (Jonker & Volgenant 1987; Crouse 2016).".into());
-    }
-    if done.groups {
-        let count = match done.group_count {
-            Some(count) => format!("into {} as chosen by hand", counted(count, "group")),
-            None => "into as many groups as made the mean silhouette largest (Rousseeuw 1987)".into(),
-        };
-        told.push(format!(
-            "Equivalent dipoles of several people were brought to one head of {} mm radius and grouped by Ward's hierarchy (Ward 1963) of the squared distance of their places plus (30 mm)² sin² of the angle between their axes, {count}.",
-            given(CANONICAL_RADIUS_MM)
-        ));
-    }
-    told.push("Positions are equivalent positions in a spherical model, whose published error is about 10 mm (Cuffin et al. 2001).".into());
-    told
+    values.count("group-count", done.group_count.unwrap_or(0), "group");
 }
 
-/// What a drawn head is off in, as exactly as a paper says it.
-fn imperfect(facts: &Facts) -> String {
-    drawn_errors(&facts.report.settings.errors, facts.skull, facts.sphere)
-        .replace(" mm off", " mm off along the scalp (root mean square)")
-        .replace("as skull", "as skull (even in the logarithm)")
-}
+/// What counts as near-dipolar where nothing else is said, in percent.
+const USUAL_SHARES: &str = "5, 10 and 15";
 
-fn has(facts: &Facts, code: Code) -> bool {
-    facts.report.notes.iter().any(|note| note.code == code)
-}
-
-/// The labels that a note names.
-fn labels_of<'a>(facts: &Facts<'a>, code: Code) -> Option<&'a [String]> {
-    let note = facts.report.notes.iter().find(|note| note.code == code)?;
-    match note.values.get("labels") {
-        Some(Value::List(labels)) => Some(labels),
-        _ => None,
-    }
-}
-
-/// A share in percent as it was set.
-fn share(value: f64) -> String {
-    given(100.0 * value)
-}
-
-/// A number that may be below zero, with the sign of mathematics.
-fn signed(value: f64) -> String {
-    given(value).replace('-', "−")
+/// A share as it was set.
+fn percentage(share: f64) -> String {
+    given(100.0 * share)
 }
 
 /// A count as running text has it.
@@ -576,10 +453,55 @@ fn counted(count: usize, noun: &str) -> String {
 }
 
 /// "a, b and c".
-pub(super) fn series(words: &[String]) -> String {
+fn series(words: &[String]) -> String {
     match words.split_last() {
         None => String::new(),
         Some((last, [])) => last.clone(),
         Some((last, others)) => format!("{} and {last}", others.join(", ")),
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::assess::CANONICAL_RADIUS_MM;
+    use crate::forward::{MAX_ECCENTRICITY, QUICK_TOLERANCE};
+    use crate::report::{LEAST_APART_MM, MIRRORED_PART, MOST_OPPOSED, PREFERRED_SHARE, Questions};
+
+    #[test]
+    fn templates_show_and_leave_out_what_their_values_say() {
+        let values = [("a", "1".to_owned()), ("b", String::new())];
+        let text = "x {a}[a: y[b: no [a:{a}] no][!b: z]][!a: no][b: no]{b}.";
+        assert_eq!(filled(text, &values), "x 1 y z.");
+        for text in [PARAGRAPH, DRAWN] {
+            let count = |mark: char| text.matches(mark).count();
+            assert_eq!((count('['), count('{')), (count(']'), count('}')));
+        }
+    }
+
+    #[test]
+    fn numbers_of_the_paragraph_are_those_computed_with() {
+        for words in [
+            format!("within {} of the innermost radius", given(MAX_ECCENTRICITY)),
+            format!("preferred if at most {} % of", percentage(PREFERRED_SHARE)),
+            format!("at least {} of the gain", given(MIRRORED_PART)),
+            format!("Pairs under {} mm apart", given(LEAST_APART_MM)),
+            format!("over {} times as long", given(MOST_OPPOSED)),
+            format!("one head of radius {} mm", given(CANONICAL_RADIUS_MM)),
+            format!("from {} draws of subjects", number(Questions::default().draws)),
+            format!("from {} subjects on", number(FEWEST_SUBJECTS)),
+        ] {
+            assert!(PARAGRAPH.contains(&words), "{words}");
+        }
+        assert_eq!(QUICK_TOLERANCE, 3e-9);
+        assert_eq!(series(&Questions::default().at.into_iter().map(percentage).collect::<Vec<_>>()), USUAL_SHARES);
+    }
+
+    #[test]
+    fn counts_and_lists_are_as_running_text_has_them() {
+        assert_eq!([0, 1, 9, 10, 1000, 65_536].map(number), ["no", "one", "nine", "10", "1,000", "65,536"]);
+        assert_eq!((counted(1, "map"), counted(2, "map")), ("one map".into(), "two maps".into()));
+        let words = ["a", "b", "c"].map(str::to_owned);
+        assert_eq!([1, 2, 3].map(|count| series(&words[..count])), ["a", "a and b", "a, b and c"]);
     }
 }

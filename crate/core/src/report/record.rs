@@ -1,11 +1,12 @@
 //! A technical note on the fit of one map, to go with a record: what went in, what was assumed, numbers and limits. It gives
 //! no advice and finds nothing, whatever the verdict.
 
-use super::sheet::{Row, Written, head_sheet, rows, sentence};
+use super::choices::option_label;
+use super::sheet::{Row, Written, capitalised, head_sheet, rows, sentence};
 use super::trust::{CAUTIONS, PUBLISHED, causes, region_rows};
-use super::{Alternatives, Done, ErrorReport, FittedMap, MapReport, Report};
+use super::{Alternatives, Done, FittedMap, MapReport, Program, Report};
 use crate::finding::Origin;
-use crate::understand::ColumnsAre;
+use crate::placement::FEW_ELECTRODES;
 use serde::Serialize;
 
 /// A note in parts.
@@ -45,34 +46,126 @@ impl Record {
         alternatives: Option<&Alternatives>,
         done: &Done,
     ) -> Self {
-        let (name, told) = match map {
-            MapReport::Fitted(map) => (&map.name, of_fitted(report, map, alternatives, done)),
-            MapReport::Failed { name, error } => (name, vec![("Fit", of_failed(error))]),
+        let name = match map {
+            MapReport::Fitted(map) => &map.name,
+            MapReport::Failed { name, .. } => name,
         };
-        let parts = [
-            ("Status", vec![STATUS.to_owned(), CAUTIONS[2].to_owned()]),
-            ("Inputs", inputs(report, index, count, name)),
-            ("Found and assumed", assumed(report)),
-            ("Model", model(report)),
-        ];
-        let program = &report.program;
-        let build = program.build.map_or_else(String::new, |build| format!(", build {build}"));
-        let made_by = ("Program", vec![format!("{}, version {}{build}", program.name, program.version)]);
-        let parts = parts.into_iter().chain(told).chain([("Limits", limits(report)), made_by]);
-        let parts = parts.filter(|(_, lines)| !lines.is_empty()).map(|(heading, lines)| RecordPart { heading, lines });
-        Self { title: format!("Technical note on an equivalent dipole: map “{name}”"), parts: parts.collect() }
-    }
-}
+        let mut record =
+            Self { title: format!("Technical note on an equivalent dipole: map “{name}”"), parts: Vec::new() };
+        record.part("Status", &[STATUS, CAUTIONS[2]]);
 
-fn inputs(report: &Report, index: usize, count: usize, name: &str) -> Vec<String> {
-    let files = report.inputs.iter().map(|input| format!("{}: SHA-256 {}", input.name, input.sha256));
-    let kind = match report.understood.columns_are {
-        ColumnsAre::Components => "components of one decomposition",
-        ColumnsAre::TimePoints => "time points of one response",
-        ColumnsAre::Repeats => "repeats of one map",
-        ColumnsAre::Unrelated => "maps",
-    };
-    files.chain([format!("Map “{name}”: {} of {count} ({kind})", index + 1)]).collect()
+        record.part("Inputs", &[]);
+        for input in &report.inputs {
+            record.line(format!("{}: SHA-256 {}", input.name, input.sha256));
+        }
+        let are = option_label("columnsAre", &report.understood.columns_are.name().into(), None);
+        record.line(format!("Map “{name}”: {} of {count} ({are})", index + 1));
+
+        record.part("Found and assumed", &[]);
+        for choice in &report.understood.choices {
+            if matches!(choice.from, Origin::Setting | Origin::Assumed) {
+                let file = choice.file.as_ref().map_or_else(String::new, |file| format!("{file}: "));
+                record.line(file + &stated(&choice.sentence));
+            }
+        }
+        for note in &report.notes {
+            record.line(stated(&note.message));
+        }
+
+        let head = head_sheet(&report.head);
+        record.part("Model", &[]);
+        record.line(format!("{} ({})", head.title, head.source));
+        record.rows(&head.rows);
+        for (used, what) in [(true, "used"), (false, "left out")] {
+            let mut labels: Vec<&str> = Vec::new();
+            for electrode in &report.electrodes {
+                if electrode.used == used {
+                    labels.push(&electrode.label);
+                }
+            }
+            if !labels.is_empty() {
+                record.line(format!("Electrodes {what} ({}): {}", labels.len(), labels.join(", ")));
+            }
+        }
+        record.line("Reference: average of the electrodes used".into());
+
+        match map {
+            MapReport::Fitted(map) => record.fitted(report, map, alternatives, done),
+            MapReport::Failed { error, .. } => {
+                record.part("Fit", &["This map could not be fitted."]);
+                record.line(stated(&error.message));
+            }
+        }
+
+        record.part("Limits", &LIMITS);
+        for line in [PUBLISHED, CAUTIONS[1]] {
+            record.line(line.into());
+        }
+        let used = report.electrodes.iter().filter(|electrode| electrode.used).count();
+        if used < FEW_ELECTRODES {
+            record.line(format!("With {used} electrodes almost any map can look like one dipole."));
+        }
+        let Program { name, version, build } = &report.program;
+        record.part("Program", &[]);
+        record.line(format!(
+            "{name}, version {version}{}{}",
+            if build.is_some() { ", build " } else { "" },
+            build.unwrap_or_default()
+        ));
+        record
+    }
+
+    fn fitted(&mut self, report: &Report, map: &FittedMap, alternatives: Option<&Alternatives>, done: &Done) {
+        self.part("Fit", &[&sentence(map, &report.head)]);
+        self.part("Numbers", &[]);
+        let mut numbers = rows(map, &report.head, map.measured.len(), report.electrodes.len());
+        // They stand above, with the model.
+        numbers.retain(|row| !["electrodes", "head", "head_radius_mm"].contains(&row.code.as_ref()));
+        self.rows(&numbers);
+        if let (true, Some(region)) = (done.region, &map.region) {
+            let unit = Written::of(report.settings.map_unit);
+            self.part("Uncertainty", &[]);
+            self.rows(&region_rows(region, unit));
+            for cause in causes(region, unit) {
+                self.line(format!("{}, {}: {} mm per axis", cause.label, cause.size, cause.sd));
+            }
+        }
+        if let (true, Some(verdict)) = (done.verdict, &map.verdict) {
+            self.part("Verdict", &[&verdict.text]);
+            for reason in &verdict.reasons {
+                self.line(reason.text.clone());
+            }
+            self.line("The verdict rests on simulated maps and conventional limits; it is about one equivalent dipole in this model.".into());
+            self.line(CAUTIONS[0].into());
+        }
+        if let Some(found) = alternatives {
+            self.part("Other explanations", &[]);
+            for one in &found.kinds {
+                self.line(format!("{}: {}", capitalised(one.label), stated(&one.sentence)));
+            }
+        }
+    }
+
+    fn part(&mut self, heading: &'static str, lines: &[&str]) {
+        self.parts.push(RecordPart { heading, lines: Vec::new() });
+        for line in lines {
+            self.line((*line).to_owned());
+        }
+    }
+
+    /// One more line of the last part.
+    fn line(&mut self, line: String) {
+        if let Some(part) = self.parts.last_mut() {
+            part.lines.push(line);
+        }
+    }
+
+    fn rows(&mut self, rows: &[Row]) {
+        for row in rows {
+            let gap = if row.unit.is_empty() { "" } else { " " };
+            self.line(format!("{}: {}{gap}{}", row.label, row.value, row.unit));
+        }
+    }
 }
 
 /// Where a message turns to who reads it on the page, asking for something.
@@ -81,83 +174,12 @@ const ASKS: [&str; 7] =
 
 /// What a message states.
 fn stated(message: &str) -> String {
-    let end = ASKS.iter().filter_map(|ask| message.find(ask)).min().unwrap_or(message.len());
+    let mut end = message.len();
+    for ask in ASKS {
+        end = end.min(message.find(ask).unwrap_or(end));
+    }
     let text = message[..end].replace("as you chose", "as set by hand");
-    if text.ends_with('.') { text } else { format!("{text}.") }
-}
-
-fn assumed(report: &Report) -> Vec<String> {
-    let settled = |from: &Origin| matches!(from, Origin::Setting | Origin::Assumed);
-    let choices =
-        report.understood.choices.iter().filter(|choice| settled(&choice.from)).map(|choice| match &choice.file {
-            Some(file) => format!("{file}: {}", stated(&choice.sentence)),
-            None => stated(&choice.sentence),
-        });
-    choices.chain(report.notes.iter().map(|note| stated(&note.message))).collect()
-}
-
-fn model(report: &Report) -> Vec<String> {
-    let head = head_sheet(&report.head);
-    let labels = |used: bool| -> Vec<&str> {
-        report.electrodes.iter().filter(|one| one.used == used).map(|one| one.label.as_str()).collect()
-    };
-    let (used, left_out) = (labels(true), labels(false));
-    let mut told = vec![format!("{} ({})", head.title, head.source)];
-    told.extend(head.rows.iter().map(line));
-    told.push(format!("Electrodes used ({}): {}", used.len(), used.join(", ")));
-    if !left_out.is_empty() {
-        told.push(format!("Electrodes left out ({}): {}", left_out.len(), left_out.join(", ")));
-    }
-    told.push("Reference: average of the electrodes used".into());
-    told
-}
-
-fn of_fitted(
-    report: &Report,
-    map: &FittedMap,
-    alternatives: Option<&Alternatives>,
-    done: &Done,
-) -> Vec<(&'static str, Vec<String>)> {
-    let placed = report.electrodes.len();
-    let numbers = rows(map, &report.head, map.measured.len(), placed);
-    let numbers = numbers.iter().filter(|row| !["electrodes", "head", "head_radius_mm"].contains(&row.code.as_ref()));
-    let mut told = vec![("Fit", vec![sentence(map, &report.head)]), ("Numbers", numbers.map(line).collect())];
-    if let Some(region) = map.region.as_ref().filter(|_| done.region) {
-        let unit = Written::of(report.settings.map_unit);
-        let by =
-            causes(region, unit).into_iter().map(|one| format!("{}, {}: {} mm per axis", one.label, one.size, one.sd));
-        told.push(("Uncertainty", region_rows(region, unit).iter().map(line).chain(by).collect()));
-    }
-    if let Some(verdict) = map.verdict.as_ref().filter(|_| done.verdict) {
-        let reasons = verdict.reasons.iter().map(|reason| reason.text.clone());
-        let on = "The verdict rests on simulated maps and conventional limits; it is about one equivalent dipole in this model.";
-        told.push(("Verdict", [verdict.text.clone()].into_iter().chain(reasons).chain([on.to_owned()]).collect()));
-    }
-    if let Some(found) = alternatives {
-        let kinds = found
-            .kinds
-            .iter()
-            .map(|one| format!("{}: {}", super::sheet::capitalised(one.label), stated(&one.sentence)));
-        told.push(("Other explanations", kinds.collect()));
-    }
-    told
-}
-
-fn of_failed(error: &ErrorReport) -> Vec<String> {
-    vec!["No dipole was fitted to this map.".into(), error.message.clone()]
-}
-
-fn limits(report: &Report) -> Vec<String> {
-    let used = report.electrodes.iter().filter(|electrode| electrode.used).count();
-    let few = (used < crate::placement::FEW_ELECTRODES)
-        .then(|| format!("With {used} electrodes almost any map can look like one dipole."));
-    let fixed = LIMITS.into_iter().chain([PUBLISHED, CAUTIONS[1], CAUTIONS[0]]).map(str::to_owned);
-    fixed.chain(few).collect()
-}
-
-fn line(row: &Row) -> String {
-    let gap = if row.unit.is_empty() { "" } else { " " };
-    format!("{}: {}{gap}{}", row.label, row.value, row.unit)
+    if text.ends_with('.') { text } else { text + "." }
 }
 
 #[cfg(test)]

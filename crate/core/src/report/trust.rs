@@ -699,10 +699,10 @@ pub fn rule(
     let shells: Vec<String> =
         head.shells.iter().map(|s| format!("{} {}", s.tissue, given(s.conductivity_s_per_m))).collect();
     format!(
-        "{electrodes} electrodes on a sphere of {} mm ({}; S/m). Sources {}. Single dipoles: {}, {} % {}. {draws} maps of each kind, seed {}.",
+        "{electrodes} electrodes on a sphere of {} mm ({}; S/m). Sources {}, of equal moments. Single dipoles: {}, {} % {}. {draws} maps of each kind, seed {}.",
         tenths(head.radius_mm),
         shells.join(", "),
-        sources(&settings.sources),
+        source_words(&settings.sources),
         drawn_errors(&settings.errors, skull, sphere),
         percent(settings.sources.noise),
         drawn_noise(&settings.errors),
@@ -711,16 +711,16 @@ pub fn rule(
 }
 
 /// Where simulated sources are and how they point.
-pub(super) fn sources(sources: &SourceSettings) -> String {
+pub(super) fn source_words(sources: &SourceSettings) -> String {
     let pointing = match sources.orientation {
         Orientation::Isotropic => "pointing anywhere",
         Orientation::Radial => "pointing outwards or inwards",
         Orientation::Tangential => "pointing along the sphere",
     };
     format!(
-        "even in the volume of the brain up to eccentricity {}, above z = {} {} {} y in brain radii, {pointing}, of equal moments",
+        "even in the volume of the brain up to eccentricity {}, above z = {} {} {} y in brain radii, {pointing}",
         given(sources.max_eccentricity),
-        given(sources.floor[0]),
+        given(sources.floor[0]).replace('-', "−"),
         if sources.floor[1] < 0.0 { "−" } else { "+" },
         given(sources.floor[1].abs())
     )
@@ -729,7 +729,11 @@ pub(super) fn sources(sources: &SourceSettings) -> String {
 /// What a drawn head is off in.
 pub(super) fn drawn_errors(errors: &ErrorSettings, skull: Option<[f64; 2]>, sphere: bool) -> String {
     let skull = match skull {
-        Some([least, most]) => format!("brain conducting {} to {} times as well as skull", given(least), given(most)),
+        Some([least, most]) => format!(
+            "brain conducting {} to {} times as well as skull (even in the logarithm)",
+            given(least),
+            given(most)
+        ),
         None => "conductivities as modelled".into(),
     };
     let sphere = match (sphere, errors.sphere) {
@@ -737,7 +741,11 @@ pub(super) fn drawn_errors(errors: &ErrorSettings, skull: Option<[f64; 2]>, sphe
         (true, 1.0) => "sphere off by the standard error of its fit".into(),
         (true, times) => format!("sphere off by {} times the standard error of its fit", given(times)),
     };
-    format!("electrodes {} mm off, {skull}, {sphere}", given(errors.electrodes_mm))
+    let electrodes = match errors.electrodes_mm {
+        0.0 => "electrodes as given".into(),
+        mm => format!("electrodes {} mm off along the scalp (rms)", given(mm)),
+    };
+    format!("{electrodes}, {skull}, {sphere}")
 }
 
 /// Where drawn noise comes from.
