@@ -172,7 +172,7 @@ fn whatever_names_are_they_are_text(page: &Page) {
                     .ask(&format!("return {card}.innerText"), &[json!(start)])
                     .as_str()
                     .unwrap()
-                    .contains("as you chose")
+                    .contains("as set by hand")
         });
         assert_harmless(page, &start);
     }

@@ -35,7 +35,7 @@ const ALONE: [(&str, &[&str]); 10] = [
     ("verdict", &["lone electrode", "not dipolar"]),
     ("alternatives", &["parametric bootstrap", "Levenberg–Marquardt", "two free dipoles"]),
     ("influence", &["left out in turn"]),
-    ("what_if", &["Maps were fitted again with", "in place of cerebrospinal fluid"]),
+    ("what_if", &["Maps were fitted again with", "brain-to-skull ratios of 15 to 80"]),
     ("course", &["Global field power"]),
     ("shares", &["near-dipolar share"]),
     ("groups", &["Ward", "silhouette"]),
@@ -180,7 +180,7 @@ fn what_was_not_done_is_not_mentioned_and_references_are_those_cited() {
     let of = |case: Value| study.methods(&done(case)).paragraph;
     assert!(
         of(json!({ "decompositions": 4, "subjects": 2 }))
-            .contains("Four decompositions from two subjects were analysed")
+            .contains("In all, four decompositions from two subjects were analysed")
     );
     assert!(of(json!({ "shares": true, "threshold": 0.125 })).contains("at most 12.5 %"));
     assert!(of(json!({ "shares": true })).contains("at most 5, 10 and 15 %"));
@@ -230,7 +230,7 @@ fn every_setting_that_changes_what_is_done_changes_the_paragraph() {
         ),
         (&none, json!({ "axes": "front-left-up" }), "set by hand (x to the front, y to the left, z up)"),
         (&none, json!({ "mirror": true }), "Left and right of the positions were exchanged"),
-        (&none, json!({ "unusualHead": true }), "declared unusual"),
+        (&none, json!({ "unusualHead": true }), "It was declared unusual"),
         (&none, json!({ "mapUnit": "uV" }), "Maps were in µV and moments in nAm"),
         (&none, json!({ "mapUnit": "V" }), "Maps were in V and moments in nAm"),
         (&none, json!({ "flip": [1] }), "with one sign turned"),
@@ -401,7 +401,7 @@ fn a_map_that_cannot_be_fitted_says_why() {
         modest(&record);
     }
     let paragraph = study.methods(&Done::default()).paragraph;
-    assert!(paragraph.contains("Two maps could not be fitted, being constant or lacking values."), "{paragraph}");
+    assert!(paragraph.contains("Not fitted, being constant or lacking values: two maps."), "{paragraph}");
     sound(&study, "maps that cannot be fitted");
 }
 
@@ -500,4 +500,14 @@ fn native_and_wasm_tell_the_same() {
         let told = wasm.to_string();
         assert_eq!(native.to_string().replace("0123abcd", &build(&told)), told);
     }
+}
+
+#[test]
+fn the_paragraph_in_the_readme_is_what_is_told() {
+    let (electrodes, maps) = (example("watch_electrodes.tsv"), example("lamp.tsv"));
+    let request = Request { electrodes: Some(electrodes.as_bytes()), maps: maps.as_bytes(), ..Request::default() };
+    let study = open(&request, &json!({ "mapUnit": "uV" }));
+    let told = study.methods(&done(json!({ "region": true }))).paragraph.replace(", build 0123abcd", "");
+    let readme = std::fs::read_to_string(tests_folder().join("../README.md")).unwrap();
+    assert!(readme.contains(&format!("> {told}\n")), "the README has to have:\n> {told}");
 }

@@ -375,7 +375,7 @@ impl Study {
             limit: Vec::new(),
         };
         for &index in indexes {
-            let (pixels, limit) = match self.values(index).ok().and_then(|values| normalise(&values)) {
+            let (pixels, limit) = match self.normal(index) {
                 Some((map, limit)) => {
                     let sign = self.sign(index);
                     let map: Vec<f64> = map.iter().map(|value| sign * value).collect();
@@ -387,6 +387,11 @@ impl Study {
             thumbnails.limit.push(limit);
         }
         Ok(Some(thumbnails))
+    }
+
+    /// See [`normalise`]; `None` for a map that lacks values, too.
+    fn normal(&self, index: usize) -> Option<(Vec<f64>, f64)> {
+        normalise(&self.values(index).ok()?)
     }
 
     fn spline(&self) -> Option<&Spline> {

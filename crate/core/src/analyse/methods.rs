@@ -1,16 +1,14 @@
 //! What was done in the words of a paper, and a note on one map for a record.
 
-use super::{Study, normalise};
+use super::Study;
 use crate::finding::Error;
-use crate::forward::Images;
 use crate::report::{Alternatives, Assessment, Done, Facts, MapReport, Methods, Record};
-use crate::simulate::HeadErrors;
 
 impl Study {
     /// What was done, as a paper tells it, with the sources that it cites; nothing is fitted for it.
     pub fn methods(&self, done: &Done) -> Methods {
         let errors = self.head_errors();
-        let unfitted = |&index: &usize| self.values(index).ok().and_then(|values| normalise(&values)).is_none();
+        let unfitted = |&index: &usize| self.normal(index).is_none();
         Methods::new(
             &Facts {
                 report: &self.facts(),
@@ -18,11 +16,9 @@ impl Study {
                 unfitted: (0..self.count()).filter(unfitted).count(),
                 measured: self.placement.measured,
                 axes: &self.placement.axes,
-                images: self.fitter.field().images().map(Images::count),
+                images: self.fitter.field().images().is_some(),
                 skull: errors.skull_ratio,
                 sphere: errors.sphere.is_some(),
-                tissues: [HeadErrors::has_skull(&self.shells), self.has_fluid()],
-                spheres: self.other_spheres(),
                 pairs: self.pairs_are_tried(),
             },
             done,

@@ -5,7 +5,6 @@ use super::trust::scaled;
 use crate::fit::{Fit, Fitter, LocalFitter};
 use crate::forward::LeadField;
 use crate::head::{ShellSpec, Shells, Sphere};
-use crate::math::Cholesky;
 use crate::math::{Vec3, mean, sort_by_number};
 use crate::placement::Placed;
 use crate::report::{
@@ -161,13 +160,16 @@ impl Study {
         }
         let seen_from =
             |centre: Vec3| -> Vec<Vec3> { points.iter().filter_map(|point| (*point - centre).unit()).collect() };
-        let upper = self.upper_sphere().map(|sphere| {
+        let fitted = self.head();
+        let fitted = fitted.centre_is_fitted && fitted.radius_is_fitted;
+        let upper = fitted.then(|| self.upper_sphere()).flatten().map(|sphere| {
             let off = self.placement.axes.axes.to_canonical(sphere.centre - centre) * (1.0 / radius);
             elsewhere(seen_from(off), off, sphere.radius / radius)
         });
         made.push((Change::UpperSphere, upper.into_iter().collect()));
+        let errors = HeadErrors::sphere_of(&self.all_points()).filter(|_| fitted);
         let mut centres = Vec::new();
-        if let Some((sd, normal)) = self.sphere_fit() {
+        if let Some((sd, normal)) = errors {
             for axis in 0..3 {
                 let unit: Vec<f64> = (0..4).map(|i| if i == axis { 1.0 } else { 0.0 }).collect();
                 let error = sd * normal.solve(&unit)[axis].sqrt();
@@ -184,31 +186,8 @@ impl Study {
         made
     }
 
-    /// Whether brain can take the place of cerebrospinal fluid.
-    pub(super) fn has_fluid(&self) -> bool {
-        without_fluid(&self.shells).is_some()
-    }
-
-    /// Whether there are a sphere of the upper electrodes and a standard error of the centre.
-    pub(super) fn other_spheres(&self) -> [bool; 2] {
-        [self.upper_sphere().is_some(), self.sphere_fit().is_some()]
-    }
-
-    /// Of a fitted sphere, the standard deviation of the electrodes and the normal equations.
-    fn sphere_fit(&self) -> Option<(f64, Cholesky)> {
-        self.is_fitted().then(|| HeadErrors::sphere_of(&self.all_points())).flatten()
-    }
-
-    fn is_fitted(&self) -> bool {
-        let head = self.head();
-        head.centre_is_fitted && head.radius_is_fitted
-    }
-
-    /// Fitted to the highest electrodes, where the sphere is fitted to all.
+    /// Fitted to the highest electrodes.
     fn upper_sphere(&self) -> Option<Sphere> {
-        if !self.is_fitted() {
-            return None;
-        }
         let mut electrodes: Vec<&Placed> = self.placement.electrodes.iter().collect();
         sort_by_number(&mut electrodes, |e| -self.placement.canonical(e.position_mm)[2]);
         let count = libm::ceil(UPPER * electrodes.len() as f64) as usize;

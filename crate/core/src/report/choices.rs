@@ -142,7 +142,7 @@ pub fn sentence(choice: &Choice) -> String {
         _ => String::new(),
     };
     let why = match (choice.from, choice.setting) {
-        (Origin::Setting, _) => ", as you chose",
+        (Origin::Setting, _) => ", as set by hand",
         (Origin::Declared, "encoding") => ", by the mark at its beginning",
         (Origin::Declared, _) => ", as a file says",
         (Origin::Found, "units") => ", by the size of the head",

@@ -2,15 +2,15 @@
 //! been done beyond the fit, with the sources that these words cite.
 
 use super::messages::{axes_words, clipped, listed};
-use super::number::{given, significant, tenths};
-use super::sheet::{Written, capitalised, head_title};
+use super::number::{given, signed, significant, tenths};
+use super::sheet::{Written, head_title, skull};
 use super::summary::FEWEST_SUBJECTS;
 use super::trust::{drawn_errors, drawn_noise, source_words};
 use super::{NoiseSettings, Polarity, Report, Settings};
 use crate::finding::Value;
 use crate::map::MapUnit;
 use crate::placement::{AxesFound, Evidence};
-use crate::understand::{ColumnsAre, Moments, Role};
+use crate::understand::{ColumnsAre, Role};
 use serde::{Deserialize, Serialize};
 
 /// The paragraph. `{name}` stands for a value, `[name:…]` is left out where that value is empty, `[!name:…]` where it is not;
@@ -20,8 +20,8 @@ A single equivalent current dipole was fitted to [one:one ][!one:each of {maps} 
 [components:component map][time-points:time point][repeats:repeat][unrelated:map][!one:s]\
 [time-points: of a response][repeats: of a map][span: ({span})] in a spherical head model with Inward \
 (version {version}[build:, build {build}]).\
-[unfitted: {unfitted} could not be fitted, being constant or lacking values.]\
-[several: {several}[subjects: from {subjects}] were analysed; the numbers of maps and electrodes are those of one of them.]\
+[unfitted: Not fitted, being constant or lacking values: {unfitted}.]\
+[several: In all, {several}[subjects: from {subjects}] were analysed; the numbers of maps and electrodes are those of one of them.]\
 [unmixing-inverted: Maps were the columns of the pseudo-inverse of the unmixing matrix[sphering: times the sphering matrix].]\
 [baseline: The mean from {baseline} was subtracted at each electrode.]\
 [course: Global field power was the root mean square (rms) of the average-referenced map (Lehmann & Skrandies 1980).] \
@@ -44,19 +44,19 @@ Maps and lead field were referred to the average of the electrodes used\
 [mirrored: By their labels the positions are the mirror image of a head; they were kept as given.] \
 The head was [shells:modelled by {shells} concentric shells ({tissues}) with outer radii of {radii} mm and conductivities of {conductivities} S/m]\
 [!shells:one homogeneous sphere of radius {radii} mm and conductivity {conductivities} S/m] ({source}).\
-[unusual-head: It was declared unusual (infant, defect of the skull or craniotomy); concentric shells may not hold for it.] \
+[unusual-head: It was declared unusual, so that concentric shells may not hold for it.] \
 Potentials were computed by the infinite series for a layered sphere (de Munck & Peters 1993; Zhang 1995)\
-[images:, evaluated by {images} (after Berg & Scherg 1994) with an error of at most 3·10⁻⁹ of the largest value on the scalp]. \
+[images:, evaluated by image sources (after Berg & Scherg 1994) with an error of at most 3·10⁻⁹ of the largest value on the scalp]. \
 Residual variance (RV), the squared norm of the map less the dipole's map over that of the map, was minimised over all positions within 0.98 of the innermost radius, \
 the moment being eliminated by variable projection (Golub & Pereyra 1973): about 1,600 positions gave up to five separate starts, which Newton steps with exact derivatives refined; the boundary was an active constraint. \
 Adjusted RV was RV · (N − 1)/(N − 7), with N = {used} electrodes and {free} degrees of freedom after reference, position and moment. \
 The sign of a map was taken as [declared:meaningful and its moment as a direction][!declared:arbitrary and its moment as an axis][flips:, with {flips} turned]. \
-[unit:Maps were in {unit} and moments in nAm][!unit:The unit of the maps was not known and moments were relative]\
+[microvolts:Maps were in µV and moments in nAm][volts:Maps were in V and moments in nAm][relative:The unit of the maps was not known and moments were relative]\
 [activations:, for {activations} times the standard deviation of the activation].\
 [region: The region of uncertainty is the ellipsoid about the fitted position that held 95 % of {draws} refits: the fitted dipole was seen through heads {drawn}, and fitted again in the head as modelled.\
 [repeats: The scatter of the repeats' positions was computed too.] \
 The profile region for independent noise (Bates & Watts 1988) and Moran's I of the residual (Moran 1950; Cliff & Ord 1981) were computed for comparison.]\
-[simulated: Reference populations were {simulated} maps of each kind – [populations:independent noise, one, two, five, twenty][!populations:one, two] and a hundred dipoles – simulated for the same electrodes and head (seed {seed}; O'Neill 2014) and fitted likewise. \
+[simulated: Reference populations were {population} maps of each kind – [populations:independent noise, one, two, five, twenty][!populations:one, two] and a hundred dipoles – simulated for the same electrodes and head (seed {seed}; O'Neill 2014) and fitted likewise. \
 Their sources were {sources}, of equal moments; single dipoles were seen through an imperfect head – {errors} – with {share} % of {noise}.]\
 [verdict: The verdict on a map was the first that held of lone electrode (one channel with over {lone} % of its power), \
 [paired:paired (a mirrored pair preferred, see below), ]edge (position on the boundary), below the brain (position under the floor of the simulated sources), \
@@ -70,9 +70,8 @@ the fitted dipole was seen through up to {draws} heads [region:drawn as for the 
 the fall of RV over the RV of the pair plus what errors of the head alone leave[both:; a mirrored pair also with at least 0.8 of the gain of two free dipoles]. \
 Pairs under 20 mm apart, or whose two maps were over 4 times as long as their sum, were refused.]]\
 [influence: Each electrode was left out in turn and the map fitted again.]\
-[what-if: Maps were fitted again with [skull:brain-to-skull ratios of 15, 20, 25, 40 and 80, ]electrodes misplaced by 2 and 5 mm (rms of 20 draws), \
-[upper:a sphere of the upper 65 % of the electrodes, ][centre:a centre off by its standard error, ]a sphere 5 % larger and smaller[fluid:, and brain in place of cerebrospinal fluid].]\
-[shares: The near-dipolar share is the part of the fitted maps with an RV of at most {shares} %\
+[what-if: Maps were fitted again with [skull:brain-to-skull ratios of 15 to 80, ]electrodes misplaced by 2 and 5 mm and other spheres.]\
+[shares: The near-dipolar share is the part of the fitted maps with an RV of at most {at} %\
 [mean:, averaged over the subjects of decompositions of one name][intervals:; from five subjects on, 95 % intervals came from 4,000 draws of subjects (expanded percentiles, Hesterberg 2015; O'Neill 2014)].]\
 [matches: Maps of two decompositions were matched one to one by the largest sum of |r| over the electrodes of both (Jonker & Volgenant 1987; Crouse 2016).]\
 [groups: Equivalent dipoles of several people, brought to one head of radius 88 mm, were grouped by Ward's hierarchy (Ward 1963) of the squared distance of places plus (30 mm)² sin² of the angle between axes, \
@@ -141,16 +140,12 @@ pub struct Facts<'a> {
     pub measured: bool,
     /// What told the axes.
     pub axes: &'a AxesFound,
-    /// Number of image sources; `None` for the plain series.
-    pub images: Option<usize>,
+    /// Whether image sources stand for the series.
+    pub images: bool,
     /// What is drawn of the skull.
     pub skull: Option<[f64; 2]>,
     /// Whether the sphere is drawn.
     pub sphere: bool,
-    /// Whether the head has a skull and cerebrospinal fluid that can be otherwise.
-    pub tissues: [bool; 2],
-    /// Whether there are a sphere of the upper electrodes and a standard error of the centre.
-    pub spheres: [bool; 2],
     /// Whether mirrored and free pairs can be tried.
     pub pairs: [bool; 2],
 }
@@ -238,196 +233,156 @@ fn filled(template: &str, values: &[(&str, String)]) -> String {
 impl Methods {
     /// From what was done.
     pub fn new(facts: &Facts, done: &Done) -> Self {
-        let mut values = Values::default();
-        of_maps(&mut values, facts, done);
-        of_electrodes(&mut values, facts);
-        of_fit(&mut values, facts);
-        of_trust(&mut values, facts, done);
-        let paragraph = filled(PARAGRAPH, &values.0);
+        let paragraph = filled(PARAGRAPH, &values(facts, done));
         let references = SOURCES.into_iter().filter(|source| paragraph.contains(&citation(source))).collect();
         Self { paragraph, references }
     }
 }
 
-/// What templates are filled with.
-#[derive(Default)]
-struct Values(Vec<(&'static str, String)>);
+type Values = Vec<(&'static str, String)>;
 
-impl Values {
-    #[inline(never)]
-    fn set(&mut self, name: &'static str, value: String) {
-        self.0.push((name, value));
-    }
-
-    /// A value that is there or not.
-    fn flag(&mut self, name: &'static str, is: bool) {
-        if is {
-            self.set(name, name.to_owned());
-        }
-    }
-
-    /// A number unless it is none.
-    #[inline(never)]
-    fn count(&mut self, name: &'static str, count: usize, noun: &str) {
-        if count > 0 {
-            self.set(name, counted(count, noun));
-        }
-    }
+/// Values by their names. The names stand in one table: beside each value they would take twice the code.
+macro_rules! named {
+    ($($name:literal => $value:expr,)*) => {{
+        const NAMES: &[&str] = &[$($name,)*];
+        NAMES.iter().copied().zip([$($value,)*])
+    }};
 }
 
-fn of_maps(values: &mut Values, facts: &Facts, done: &Done) {
-    let Report { program, settings, understood, notes, .. } = facts.report;
+/// What the template is filled with.
+fn values(facts: &Facts, done: &Done) -> Values {
+    let Report { program, settings, head, electrodes, understood, notes, .. } = facts.report;
+    let Settings { errors, sources, limits, .. } = settings;
+    let simulated = done.populations || done.verdict;
+    let [mirrored, free] = facts.pairs;
+    let axes = facts.axes;
+    let used = electrodes.iter().filter(|electrode| electrode.used).count();
+    let mut values = Values::new();
     for note in notes {
-        let named = note.values.get("labels").or(note.values.get("reference"));
-        let told = match named {
+        let told = match note.values.get("labels").or(note.values.get("reference")) {
             Some(Value::List(labels)) => listed(labels),
             Some(Value::Text(label)) => clipped(label),
             _ => note.message.clone(),
         };
-        values.set(note.code.as_str(), told);
+        values.push((note.code.as_str(), told));
     }
-    values.flag(understood.columns_are.name(), true);
-    values.set("maps", number(facts.maps));
-    values.set("version", program.version.to_owned());
-    values.set("build", program.build.unwrap_or_default().to_owned());
-    if facts.unfitted > 0 {
-        values.set("unfitted", capitalised(&counted(facts.unfitted, "map")));
-    }
-    if done.decompositions > 1 {
-        values.set("several", capitalised(&counted(done.decompositions, "decomposition")));
-    }
-    values.count("subjects", done.subjects, "subject");
-    if let Some(Moments { times, unit, .. }) = &understood.times {
-        let window = settings.baseline.map(|window| [window.from, window.to]);
-        let span = times.first().zip(times.last()).map(|(first, last)| [*first, *last]);
-        for (name, ends) in [("baseline", window), ("span", span)] {
-            if let Some([from, to]) = ends {
-                values.set(name, format!("{} to {} {unit}", given(from), given(to)).replace('-', "−"));
-            }
-        }
-    }
-}
-
-fn of_electrodes(values: &mut Values, facts: &Facts) {
-    let Report { head, electrodes, .. } = facts.report;
-    let used = electrodes.iter().filter(|electrode| electrode.used).count();
-    for (name, count) in [("placed", electrodes.len()), ("used", used), ("free", used - 7)] {
-        values.set(name, count.to_string());
-    }
-    values.flag("all", used == electrodes.len());
-    for (name, mm) in [("radius", head.radius_mm), ("off", head.fit_rms_mm), ("farthest", head.fit_max_mm)] {
-        values.set(name, tenths(mm));
-    }
-    let axes = facts.axes;
-    match (axes.evidence, axes.name, axes.misfit_degrees) {
-        (Evidence::Setting, Some(name), _) => values.set("axes-set", axes_words(&name.to_string())),
-        (Evidence::Labels, _, Some(misfit)) => values.set("misfit", significant(misfit, 2)),
-        _ => {}
-    }
-}
-
-fn of_fit(values: &mut Values, facts: &Facts) {
-    let Report { settings, head, .. } = facts.report;
-    let mut columns: [Vec<String>; 3] = Default::default();
-    for shell in &head.shells {
-        columns[0].push(clipped(&shell.tissue));
-        columns[1].push(tenths(shell.outer_radius_mm));
-        columns[2].push(given(shell.conductivity_s_per_m));
-    }
-    for (name, column) in ["tissues", "radii", "conductivities"].into_iter().zip(&columns) {
-        values.set(name, series(column));
-    }
-    if head.shells.len() > 1 {
-        values.set("shells", number(head.shells.len()));
-    }
-    values.set(
-        "source",
-        match head.name {
-            Some(_) => head_title(head).1.replacen("Radii", "radii", 1),
-            None => "set by hand".into(),
-        },
-    );
-    if settings.map_unit != MapUnit::Relative {
-        values.set("unit", if settings.map_unit == MapUnit::Volt { "V" } else { "µV" }.into());
-    }
-    values.count("images", facts.images.unwrap_or(0), "image source");
-    values.count("flips", settings.flip.len(), "sign");
-    values.count("activations", settings.activation_sd.iter().flatten().count(), "map");
-}
-
-fn of_trust(values: &mut Values, facts: &Facts, done: &Done) {
-    let Report { settings, head, understood, .. } = facts.report;
-    let Settings { errors, sources, limits, .. } = settings;
-    let simulated = done.populations || done.verdict;
-    let [mirrored, free] = facts.pairs;
-    for (name, is) in [
-        ("one", facts.maps == 1),
-        ("sphering", understood.files.iter().any(|file| file.role == Role::Sphering)),
-        ("course", done.course && understood.columns_are == ColumnsAre::TimePoints),
-        ("measured", facts.measured),
-        ("centre-set", !head.centre_is_fitted),
-        ("radius-set", !head.radius_is_fitted),
-        ("sphere-set", !head.centre_is_fitted && !head.radius_is_fitted),
-        ("landmarks", facts.axes.evidence == Evidence::Landmarks),
-        ("mirror", settings.mirror == Some(true)),
-        ("mirrored", facts.axes.mirrored && settings.mirror == Some(false)),
-        ("declared", settings.polarity == Polarity::Declared),
-        ("region", done.region),
-        ("populations", done.populations),
-        ("verdict", done.verdict),
-        ("alternatives", done.alternatives),
-        ("influence", done.influence),
-        ("what-if", done.what_if),
-        ("skull", facts.tissues[0]),
-        ("fluid", facts.tissues[1]),
-        ("upper", facts.spheres[0]),
-        ("centre", facts.spheres[1]),
-        ("mirrored-pair", mirrored),
-        ("free-pair", free),
-        ("pairs", mirrored || free),
-        ("both", mirrored && free),
-        ("paired", done.alternatives && mirrored),
-        ("two-free", done.alternatives && free),
+    let flags = named! {
+        "components" => understood.columns_are == ColumnsAre::Components,
+        "time-points" => understood.columns_are == ColumnsAre::TimePoints,
+        "repeats" => understood.columns_are == ColumnsAre::Repeats,
+        "unrelated" => understood.columns_are == ColumnsAre::Unrelated,
+        "one" => facts.maps == 1,
+        "sphering" => understood.files.iter().any(|file| file.role == Role::Sphering),
+        "course" => done.course && understood.columns_are == ColumnsAre::TimePoints,
+        "all" => used == electrodes.len(),
+        "measured" => facts.measured,
+        "centre-set" => !head.centre_is_fitted,
+        "radius-set" => !head.radius_is_fitted,
+        "sphere-set" => !head.centre_is_fitted && !head.radius_is_fitted,
+        "landmarks" => axes.evidence == Evidence::Landmarks,
+        "mirror" => settings.mirror == Some(true),
+        "mirrored" => axes.mirrored && settings.mirror == Some(false),
+        "images" => facts.images,
+        "declared" => settings.polarity == Polarity::Declared,
+        "volts" => settings.map_unit == MapUnit::Volt,
+        "microvolts" => settings.map_unit == MapUnit::Microvolt,
+        "relative" => settings.map_unit == MapUnit::Relative,
+        "region" => done.region,
+        "simulated" => simulated,
+        "populations" => done.populations,
+        "verdict" => done.verdict,
+        "alternatives" => done.alternatives,
+        "mirrored-pair" => mirrored,
+        "free-pair" => free,
+        "pairs" => mirrored || free,
+        "both" => mirrored && free,
+        "paired" => done.alternatives && mirrored,
+        "two-free" => done.alternatives && free,
+        "influence" => done.influence,
+        "what-if" => done.what_if,
+        "skull" => skull(head).is_some(),
+        "shares" => done.shares,
+        "mean" => done.subjects > 1,
+        "intervals" => done.subjects >= FEWEST_SUBJECTS,
+        "matches" => done.matches,
+        "groups" => done.groups,
         // Where simulated sources lie is told once.
-        ("where", errors.background_sources > 0 && !simulated),
-        ("mean", done.subjects > 1),
-        ("intervals", done.subjects >= FEWEST_SUBJECTS),
-        ("matches", done.matches),
-        ("groups", done.groups),
-    ] {
-        values.flag(name, is);
-    }
-    for (name, share) in [
-        ("share", sources.noise),
-        ("lone", limits.lone_electrode),
-        ("ruled-out", limits.ruled_out),
-        ("one-dipole", limits.one_dipole),
-        ("others", limits.others),
-    ] {
-        values.set(name, percentage(share));
-    }
-    if simulated {
-        values.set("simulated", number(sources.draws));
-    }
-    values.set("draws", number(errors.draws));
-    values.set("seed", sources.seed.to_string());
-    values.set("errors-seed", errors.seed.to_string());
-    values.set("sources", source_words(sources));
-    values.set("errors", drawn_errors(errors, facts.skull, facts.sphere));
-    values.set("noise", drawn_noise(errors));
-    if let Some(noise) = &settings.noise {
-        let unit = Written::of(settings.map_unit);
-        values.set("noise-sd", format!("{} {}", significant(unit.factor * noise.sd(), 2), unit.name));
-        if let NoiseSettings::Trials { trials, .. } = noise {
-            values.count("trials", *trials, "trial");
+        "where" => errors.background_sources > 0 && !simulated,
+    };
+    for (name, is) in flags {
+        if is {
+            values.push((name, name.to_owned()));
         }
     }
-    let drawn = filled(DRAWN, &values.0);
-    values.set("drawn", drawn);
-    if done.shares {
-        values.set("shares", done.threshold.map_or_else(|| USUAL_SHARES.into(), percentage));
+    let [mut tissues, mut radii, mut conductivities] = [Vec::new(), Vec::new(), Vec::new()];
+    for shell in &head.shells {
+        tissues.push(clipped(&shell.tissue));
+        radii.push(tenths(shell.outer_radius_mm));
+        conductivities.push(given(shell.conductivity_s_per_m));
     }
-    values.count("group-count", done.group_count.unwrap_or(0), "group");
+    let source = match (head.name, head_title(head).1) {
+        (None, _) => "set by hand".into(),
+        (_, source) => source.strip_prefix("Radii").map_or(source.into(), |rest| format!("radii{rest}")),
+    };
+    let unit = Written::of(settings.map_unit);
+    let (times, time_unit) = understood.times.as_ref().map_or((&[][..], ""), |times| (&times.times, times.unit));
+    let between = |ends: Option<(f64, f64)>| match ends {
+        Some((from, to)) => format!("{} to {} {time_unit}", signed(from), signed(to)),
+        None => String::new(),
+    };
+    let trials = match settings.noise {
+        Some(NoiseSettings::Trials { trials, .. }) => trials,
+        _ => 0,
+    };
+    values.extend(named! {
+        "maps" => number(facts.maps),
+        "version" => program.version.to_owned(),
+        "build" => program.build.unwrap_or_default().to_owned(),
+        "unfitted" => counted(facts.unfitted, "map"),
+        "several" => counted(if done.decompositions > 1 { done.decompositions } else { 0 }, "decomposition"),
+        "subjects" => counted(done.subjects, "subject"),
+        "span" => between(times.first().copied().zip(times.last().copied())),
+        "baseline" => between(settings.baseline.map(|window| (window.from, window.to))),
+        "placed" => electrodes.len().to_string(),
+        "used" => used.to_string(),
+        "free" => (used - 7).to_string(),
+        "radius" => tenths(head.radius_mm),
+        "off" => tenths(head.fit_rms_mm),
+        "farthest" => tenths(head.fit_max_mm),
+        "axes-set" => match (axes.evidence, axes.name) {
+            (Evidence::Setting, Some(name)) => axes_words(&name.to_string()),
+            _ => String::new(),
+        },
+        "misfit" => axes.misfit_degrees.map_or_else(String::new, |misfit| significant(misfit, 2)),
+        "shells" => if head.shells.len() > 1 { number(head.shells.len()) } else { String::new() },
+        "tissues" => series(&tissues),
+        "radii" => series(&radii),
+        "conductivities" => series(&conductivities),
+        "source" => source,
+        "flips" => counted(settings.flip.len(), "sign"),
+        "activations" => counted(settings.activation_sd.iter().flatten().count(), "map"),
+        "draws" => number(errors.draws),
+        "errors-seed" => errors.seed.to_string(),
+        "errors" => drawn_errors(errors, facts.skull, facts.sphere),
+        "noise" => drawn_noise(errors),
+        "noise-sd" => match &settings.noise {
+            Some(noise) => format!("{} {}", significant(unit.factor * noise.sd(), 2), unit.name),
+            None => String::new(),
+        },
+        "trials" => counted(trials, "trial"),
+        "population" => number(sources.draws),
+        "seed" => sources.seed.to_string(),
+        "sources" => source_words(sources),
+        "share" => percentage(sources.noise),
+        "lone" => percentage(limits.lone_electrode),
+        "ruled-out" => percentage(limits.ruled_out),
+        "one-dipole" => percentage(limits.one_dipole),
+        "others" => percentage(limits.others),
+        "at" => done.threshold.map_or_else(|| USUAL_SHARES.into(), percentage),
+        "group-count" => counted(done.group_count.unwrap_or(0), "group"),
+    });
+    values.push(("drawn", filled(DRAWN, &values)));
+    values
 }
 
 /// What counts as near-dipolar where nothing else is said, in percent.
@@ -448,7 +403,11 @@ fn number(count: usize) -> String {
     }
 }
 
+/// A number of things; nothing for none.
 fn counted(count: usize, noun: &str) -> String {
+    if count == 0 {
+        return String::new();
+    }
     format!("{} {noun}{}", number(count), if count == 1 { "" } else { "s" })
 }
 

@@ -71,6 +71,11 @@ pub(super) fn given(value: f64) -> String {
     }
 }
 
+/// The same of what may be below zero, with the sign of mathematics.
+pub(super) fn signed(value: f64) -> String {
+    format!("{}{}", if value < 0.0 { "−" } else { "" }, given(value.abs()))
+}
+
 /// The power of ten of a number's first digit.
 fn magnitude(value: f64) -> i32 {
     if value == 0.0 {

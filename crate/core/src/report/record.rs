@@ -2,7 +2,7 @@
 //! no advice and finds nothing, whatever the verdict.
 
 use super::choices::option_label;
-use super::sheet::{Row, Written, capitalised, head_sheet, rows, sentence};
+use super::sheet::{Row, Written, head_sheet, rows, sentence};
 use super::trust::{CAUTIONS, PUBLISHED, causes, region_rows};
 use super::{Alternatives, Done, FittedMap, MapReport, Program, Report};
 use crate::finding::Origin;
@@ -141,7 +141,7 @@ impl Record {
         if let Some(found) = alternatives {
             self.part("Other explanations", &[]);
             for one in &found.kinds {
-                self.line(format!("{}: {}", capitalised(one.label), stated(&one.sentence)));
+                self.line(format!("{}: {}", one.label, stated(&one.sentence)));
             }
         }
     }
@@ -178,8 +178,8 @@ fn stated(message: &str) -> String {
     for ask in ASKS {
         end = end.min(message.find(ask).unwrap_or(end));
     }
-    let text = message[..end].replace("as you chose", "as set by hand");
-    if text.ends_with('.') { text } else { text + "." }
+    let text = &message[..end];
+    format!("{text}{}", if text.ends_with('.') { "" } else { "." })
 }
 
 #[cfg(test)]

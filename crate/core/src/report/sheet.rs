@@ -371,7 +371,7 @@ pub(super) fn head_title(head: &HeadReport) -> (&'static str, &'static str) {
 }
 
 /// Index of the shell called skull, if there is one inside another.
-fn skull(head: &HeadReport) -> Option<usize> {
+pub(super) fn skull(head: &HeadReport) -> Option<usize> {
     head.shells.iter().position(|shell| shell.tissue.eq_ignore_ascii_case("skull")).filter(|index| *index > 0)
 }
 

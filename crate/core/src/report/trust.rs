@@ -1,6 +1,6 @@
 //! How far a fit may be trusted: as it stands in a report, and in words.
 
-use super::number::{given, hundredths, millimetres, percent, percent_left, significant, tenths};
+use super::number::{given, hundredths, millimetres, percent, percent_left, signed, significant, tenths};
 use super::sheet::{Row, Written, row};
 use super::{ErrorSettings, FittedMap, HeadReport, Settings, SourceSettings};
 use crate::assess::{Hint, Reason, ReasonCode, Reference, Word};
@@ -720,7 +720,7 @@ pub(super) fn source_words(sources: &SourceSettings) -> String {
     format!(
         "even in the volume of the brain up to eccentricity {}, above z = {} {} {} y in brain radii, {pointing}",
         given(sources.max_eccentricity),
-        given(sources.floor[0]).replace('-', "−"),
+        signed(sources.floor[0]),
         if sources.floor[1] < 0.0 { "−" } else { "+" },
         given(sources.floor[1].abs())
     )
