@@ -701,6 +701,8 @@ interface GlueStudy {
   with(settings: EngineSettings): GlueStudy;
   /** Other tables; what was prepared is used again where head and electrodes are the same. */
   beside(request: EngineRequest): GlueStudy;
+  /** The same study with its files under other names. */
+  renamed(names: Record<string, string>): GlueStudy;
   free(): void;
 }
 
@@ -712,6 +714,8 @@ interface Glue {
   kindOf(content: InwardContent): InputKind;
   /** What a file is, by its content. */
   roleOf(name: string, content: InwardContent): FileRole;
+  /** SHA-256 in hexadecimal. */
+  digest(content: InwardContent): string;
   heads(): CatalogueHead[];
   /** Units that depend on the maps' are named together where none is given. */
   columns(unit?: MapUnit): TableColumn[];
@@ -766,6 +770,8 @@ interface Study {
   /** Other tables; what was prepared is used again where head and electrodes are the same. */
   beside(request: EngineRequest): Study;
   close(): void;
+  /** The same study with its files under other names; it is not opened again after a trap. */
+  renamed(names: Record<string, string>): Study;
   fitWithin(first: number, milliseconds: number): ReportMap[];
   rowsWithin(first: number, last: number, milliseconds: number): (MapRow | UnfittedMap)[];
   thumbnails(indexes: number[], size: number): Thumbnails | null;
@@ -815,6 +821,8 @@ interface Engine {
   open(request: EngineRequest): Study;
   kindOf(content: InwardContent): InputKind;
   roleOf(name: string, content: InwardContent): FileRole;
+  /** SHA-256 in hexadecimal, of text as UTF-8. */
+  digest(content: InwardContent): string;
   columns(unit?: MapUnit): TableColumn[];
   /** Near-dipolar shares, from numbers alone. */
   summary(request: SummaryRequest): Summary;
@@ -910,6 +918,8 @@ type WorkerTask =
   | { kind: "choices" }
   | { kind: "columns"; unit: MapUnit }
   | { kind: "roleOf"; name: string; content: InwardContent }
+  | { kind: "digest"; content: InwardContent }
+  | { kind: "preamble"; key: number; names: Record<string, string> }
   | { kind: "warm"; request: EngineRequest }
   | { kind: "open"; key: number }
   | { kind: "fit"; key: number; first: number; last: number | null; opening: boolean }
@@ -917,8 +927,8 @@ type WorkerTask =
   | { kind: "thumbnails"; key: number; indexes: number[]; size: number }
   | { kind: "summary"; request: SummaryRequest }
   | { kind: "matches"; keys: number[]; own: Float64Array; others: Float64Array; names: string[] }
-  | { kind: "report"; key: number; chosen: number; explained: number[]; populations: GivenPopulations | null }
-  | { kind: "comparison"; keys: number[]; members: Omit<ComparedStudy, "study">[]; settings: ComparisonSettings }
+  | { kind: "report"; key: number; names?: Record<string, string>; chosen: number; explained: number[]; populations: GivenPopulations | null }
+  | { kind: "comparison"; keys: number[]; members: Omit<ComparedStudy, "study">[]; names?: Record<string, string>[]; settings: ComparisonSettings }
   | { kind: "population-key"; key: number }
   | { kind: "population"; key: number; population: PopulationKind; first: number; last: number }
   | { kind: "trust"; key: number; index: number; populations: GivenPopulations | null }
@@ -1045,6 +1055,8 @@ interface Inputs extends Record<InputKind, Input | null> {
 interface Decomposition {
   id: number;
   name: string;
+  /** Whether the user has given the name; otherwise it is made of the file's. */
+  typed: boolean;
   /** Whose it is, empty where that is not known. */
   subject: string;
   /** Reduction of mutual information that the user has for it. */
@@ -1157,6 +1169,8 @@ interface SessionState {
   arriving: boolean;
   /** The residual variance up to which maps count as near-dipolar. */
   threshold: number;
+  /** Whether names of files and people go along with what leaves the page. */
+  namesShown: boolean;
   /** Of the current decomposition. */
   populations: Populations | null;
   explained: Explained;

@@ -4,7 +4,7 @@
 use inward_core::electrode::{Electrode, Label, standard_position};
 use inward_core::map::Maps;
 use inward_core::report::ErrorReport;
-use inward_core::{Error, Report, Request, Settings, Vec3, analyse};
+use inward_core::{Error, Report, Request, Settings, Study, Vec3, analyse};
 use inward_tests::{tests_folder, understood};
 use serde_json::{Map, Value, json};
 use std::collections::{BTreeMap, BTreeSet};
@@ -280,6 +280,36 @@ fn names_and_order_of_files_do_not_matter() {
 }
 
 /// A table in one of several forms, with every digit.
+/// Names that leave are others than those that were given.
+#[test]
+fn a_study_under_other_names_is_the_one_of_files_that_had_them() {
+    let mut count = 0;
+    for sample in samples().all {
+        let names: Vec<(String, String)> =
+            sample.files.iter().enumerate().map(|(at, (name, _))| (name.clone(), format!("file {at}"))).collect();
+        let open = |files: &[(String, Vec<u8>)], settings: &Settings| {
+            let files = files.iter().map(|(name, content)| (name.as_str(), content.as_slice())).collect();
+            Study::open(&Request { files, settings: settings.clone(), ..Request::default() })
+        };
+        let Ok(study) = open(&sample.files, &sample.settings) else { continue };
+        let renamed = study.renamed(&names).unwrap();
+        let files: Vec<(String, Vec<u8>)> =
+            sample.files.iter().zip(&names).map(|((_, content), (_, to))| (to.clone(), content.clone())).collect();
+        let other = |name: &String| names.iter().fold(name.clone(), |name, (known, given)| name.replace(known, given));
+        let mut settings = sample.settings.clone();
+        settings.files = settings.files.into_iter().map(|(name, wishes)| (other(&name), wishes)).collect();
+        let direct = open(&files, &settings).unwrap();
+        let told = |study: &Study| json!([study.preamble(), study.fit(0).unwrap()]);
+        assert_eq!(told(&renamed), told(&direct), "{}", sample.what);
+        let text = told(&renamed).to_string();
+        for (name, _) in &names {
+            assert!(!text.contains(name.as_str()), "{name} is told of {}", sample.what);
+        }
+        count += 1;
+    }
+    assert!(count > 100, "{count} samples that can be read");
+}
+
 fn written(form: usize, head: &[String], rows: &[(String, Vec<f64>)]) -> String {
     let number = |value: f64| match (value.is_nan(), form) {
         (true, 3) => "null".into(),

@@ -157,6 +157,10 @@ export function makeEngine(compiled, keeps = true) {
         const first = use((opened, glue) => ({ glue, study: opened.beside(request) }));
         return studyOn(request, () => keepRequest(request), first);
       },
+      renamed(names) {
+        const first = use((opened, glue) => ({ glue, study: opened.renamed(names) }));
+        return studyOn(kept, () => kept, first);
+      },
       close() {
         if (!closed && study !== null && owner === glue) study.free();
         closed = true;
@@ -203,6 +207,7 @@ export function makeEngine(compiled, keeps = true) {
     open: (request) => studyOn(request, () => keepRequest(request)),
     kindOf: (content) => call((current) => current.kindOf(content)),
     roleOf: (name, content) => call((current) => current.roleOf(name, content)),
+    digest: (content) => call((current) => current.digest(content)),
     compare: (list, common) => call((current) => current.compare(list, common)),
     compareStudies: (list, settings) =>
       call((current) => {

@@ -154,15 +154,25 @@ function handOver(study, given) {
   handed.set(study, given.name);
 }
 
+/** A study with its files under the names that may leave. @param {Study} study @param {Record<string, string> | undefined} names */
+function namedStudy(study, names = {}) {
+  return Object.keys(names).length === 0 ? study : study.renamed(names);
+}
+
 /**
- * What is told of a study, its files under the names that may leave.
+ * What is told of a study under the names that may leave.
  * @template T
  * @param {Study} study
- * @param {Record<string, string> | undefined} _names
+ * @param {Record<string, string> | undefined} names
  * @param {(study: Study) => T} tell
  */
-function outward(study, _names, tell) {
-  return tell(study);
+function outward(study, names, tell) {
+  const named = namedStudy(study, names);
+  try {
+    return tell(named);
+  } finally {
+    if (named !== study) named.close();
+  }
 }
 
 /** Reports of maps with what is named, from one on for about so long. @param {Study} study @param {number} first @param {string[]} what @param {number} milliseconds @returns {ReportMap[]} */
@@ -202,6 +212,44 @@ function rastersOf(sheet) {
   return [...new Set([measured.buffer, projected.buffer, residual.buffer])];
 }
 
+/**
+ * The whole report, map by map.
+ * @param {WorkerTask & { kind: "report" }} task
+ * @param {(done: number, total: number) => void} tell
+ */
+async function reportOf({ key, names, chosen, explained, populations }, tell) {
+  const study = studyOf(key);
+  handOver(study, populations);
+  const total = study.count;
+  const few = total <= MOST_REGIONS;
+  const suspects = (few ? await suspectsOf(key, study) : null)?.found ?? [];
+  const named = namedStudy(study, names);
+  try {
+    const preamble = { ...named.preamble(), suspects };
+    const parts = [reportHead(preamble)];
+    const what = few ? ["region"] : [];
+    if (populations !== null) what.push("populations", "verdict");
+    await inSlices(key, study, { first: 0, last: total }, (first, milliseconds) => {
+      const maps = assessWithin(named, first, what, milliseconds);
+      // What takes longer is told of single maps.
+      maps.forEach((_, at) => {
+        const more = [
+          ...(explained.includes(first + at) ? ["alternatives"] : []),
+          ...(chosen === first + at ? ["influence", "what_if"] : []),
+        ];
+        if (more.length > 0) maps[at] = /** @type {ReportMap} */ (named.assess(first + at, [...what, ...more]));
+      });
+      for (const map of maps) parts.push(reportMap(map, parts.length === 1));
+      tell(first + maps.length, total);
+      return maps.length;
+    });
+    parts.push(reportTail(preamble));
+    return new Blob(parts, { type: "application/json" });
+  } finally {
+    if (named !== study) named.close();
+  }
+}
+
 /** @param {WorkerMessage} message */
 async function answerTask(message) {
   const { id } = message;
@@ -218,6 +266,10 @@ async function answerTask(message) {
     case "roleOf":
       self.postMessage({ id, value: workerEngine.roleOf(message.name, message.content) });
       return giveBack(message.content);
+    case "digest":
+      return self.postMessage({ id, value: workerEngine.digest(message.content) });
+    case "preamble":
+      return self.postMessage({ id, value: outward(studyOf(message.key), message.names, (study) => openedStudy(study).preamble) });
     case "warm":
       await warmUpOn(message.request);
       return self.postMessage({ id, value: null });
@@ -250,43 +302,23 @@ async function answerTask(message) {
       const [first, second] = message.keys.map(studyOf);
       return self.postMessage({ id, value: first.matches(second, message.own, message.others, message.names) });
     }
-    case "report": {
-      const study = studyOf(message.key);
-      handOver(study, message.populations);
-      const total = study.count;
-      const few = total <= MOST_REGIONS;
-      const suspects = (few ? await suspectsOf(message.key, study) : null)?.found ?? [];
-      const preamble = { ...study.preamble(), suspects };
-      const parts = [reportHead(preamble)];
-      const what = few ? ["region"] : [];
-      if (message.populations !== null) what.push("populations", "verdict");
-      await inSlices(message.key, study, { first: 0, last: total }, (first, milliseconds) => {
-        const maps = assessWithin(study, first, what, milliseconds);
-        // What takes longer is told of single maps.
-        maps.forEach((_, at) => {
-          const more = [
-            ...(message.explained.includes(first + at) ? ["alternatives"] : []),
-            ...(message.chosen === first + at ? ["influence", "what_if"] : []),
-          ];
-          if (more.length > 0) maps[at] = /** @type {ReportMap} */ (study.assess(first + at, [...what, ...more]));
-        });
-        for (const map of maps) parts.push(reportMap(map, parts.length === 1));
-        self.postMessage({ id, progress: { done: first + maps.length, total } });
-        return maps.length;
-      });
-      parts.push(reportTail(preamble));
-      return self.postMessage({ id, value: new Blob(parts, { type: "application/json" }) });
-    }
+    case "report":
+      return self.postMessage({ id, value: await reportOf(message, (done, total) => self.postMessage({ id, progress: { done, total } })) });
     case "comparison": {
-      const { keys, members, settings } = message;
+      const { keys, members, names, settings } = message;
+      /** @type {ComparedStudy[]} */
       const list = [];
-      for (const [at, key] of keys.entries()) {
-        list.push({ ...members[at], study: studyOf(key) });
-        self.postMessage({ id, progress: { done: at + 1, total: keys.length } });
-        await breathe();
+      try {
+        for (const [at, key] of keys.entries()) {
+          list.push({ ...members[at], study: namedStudy(studyOf(key), names?.[at]) });
+          self.postMessage({ id, progress: { done: at + 1, total: keys.length } });
+          await breathe();
+        }
+        const report = workerEngine.compareStudies(list, settings);
+        return self.postMessage({ id, value: new Blob(comparisonParts(report), { type: "application/json" }) });
+      } finally {
+        list.forEach(({ study }, at) => study !== studies.get(keys[at]) && study.close());
       }
-      const report = workerEngine.compareStudies(list, settings);
-      return self.postMessage({ id, value: new Blob(comparisonParts(report), { type: "application/json" }) });
     }
     case "population-key": {
       const study = studyOf(message.key);

@@ -19,6 +19,7 @@ export function emptyDecomposition(id) {
   return {
     id,
     name: "",
+    typed: false,
     subject: "",
     information: null,
     inputs: NO_INPUTS,
@@ -205,7 +206,7 @@ export function mirrored(state) {
     if (file === fileOf(one.inputs)) return kept;
     const { subject } = entitiesOf(file);
     const others = decompositions.filter((other) => other !== one);
-    return { ...kept, name: uniqueName(namesOf([file])[0], subject, others), subject, information: null };
+    return { ...kept, name: uniqueName(namesOf([file])[0], subject, others), typed: false, subject, information: null };
   });
 }
 

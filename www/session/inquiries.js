@@ -2,6 +2,7 @@
 
 import { MOST_REGIONS } from "../engine/kinds.js";
 import { freshMaps } from "./decompositions.js";
+import { outwardNames } from "./outward.js";
 
 /** @import { Pool } from "../engine/pool/pool.js" */
 /** @import { Fitting } from "./fitting.js" */
@@ -89,15 +90,18 @@ export function makeInquiries(store, pool, fail, fitting, explained) {
      */
     async comparison(settings = {}) {
       await fitting.rest();
-      const answered = store.read().decompositions.flatMap(({ name, subject, information, answer }) =>
-        answer === null ? [] : [{ key: answer.key, member: { name, subject: subject || null, information } }],
-      );
+      const outward = outwardNames(store.read());
+      const answered = store.read().decompositions.flatMap(({ id, information, answer }) => {
+        const { name, subject } = outward.decompositions.get(id) ?? { name: "", subject: "" };
+        return answer === null ? [] : [{ key: answer.key, names: outward.told.get(id) ?? {}, member: { name, subject: subject || null, information } }];
+      });
       const keys = answered.map(({ key }) => key);
       const members = answered.map(({ member }) => member);
+      const names = answered.map((one) => one.names);
       // Tables that are others meanwhile have been closed under it.
       const isStill = () => keys.every((key) => store.read().decompositions.some(({ answer }) => answer?.key === key));
       const report = await inTime(
-        (engine, take) => engine.askAside({ kind: "comparison", keys, members, settings }, take),
+        (engine, take) => engine.askAside({ kind: "comparison", keys, members, names, settings }, take),
         isStill,
       );
       for (const key of keys) pool()?.rest(key);
@@ -141,6 +145,17 @@ export function makeInquiries(store, pool, fail, fitting, explained) {
       return engine.ask({ kind: "matches", keys: [a.key, b.key], own: positions(a), others: positions(b), names });
     },
 
+    /** What is said before the maps of a decomposition's report, under the names that may leave. @param {number} id @returns {Promise<InwardReport | null>} */
+    async outwardPreamble(id) {
+      const answer = answerOf(id);
+      return answer === null ? null : (pool()?.ask({ kind: "preamble", key: answer.key, names: outwardNames(store.read()).told.get(id) ?? {} }) ?? null);
+    },
+
+    /** SHA-256 in hexadecimal. @param {InwardContent} content @returns {Promise<string | null>} */
+    async digest(content) {
+      return pool()?.askAside({ kind: "digest", content }) ?? null;
+    },
+
     /** What a report made now would be without. */
     reportLacks() {
       const { answer } = store.read();
@@ -153,7 +168,7 @@ export function makeInquiries(store, pool, fail, fitting, explained) {
       if (answer === null) return null;
       const drawn = wholePopulations();
       const populations = drawn !== null ? { name: `${drawn.key} ${drawn.kinds.noise.length / 2}`, kinds: drawn.kinds } : null;
-      return inTime((engine, take) => engine.ask({ kind: "report", key: answer.key, chosen: answer.chosen, explained: explained(), populations }, take));
+      return inTime((engine, take) => engine.ask({ kind: "report", key: answer.key, names: outwardNames(store.read()).told.get(store.read().current), chosen: answer.chosen, explained: explained(), populations }, take));
     },
   };
 }

@@ -60,6 +60,7 @@ export function makeSession() {
       stopped: false,
       arriving: false,
       threshold: 0.1,
+      namesShown: false,
       populations: null,
       explained: UNEXPLAINED,
       suspects: null,
@@ -631,6 +632,11 @@ export function makeSession() {
     /** The residual variance up to which maps count as near-dipolar. @param {number} threshold */
     setThreshold(threshold) {
       if (store.read().threshold !== threshold) store.write({ threshold });
+    },
+
+    /** Whether names of files and people go along with what leaves the page. @param {boolean} namesShown */
+    showNames(namesShown) {
+      if (store.read().namesShown !== namesShown) store.write({ namesShown });
     },
 
     /** Gives up what the engine is at. */

@@ -58,7 +58,7 @@ export function makeSideBySide(store, pool, { fitting, step, askChanged, choose 
 
     /** @param {number} id @param {string} name */
     renameDecomposition(id, name) {
-      alter(id, "name", ({ subject }, others) => ({ name: uniqueName(name.trim(), subject, others) }));
+      alter(id, "name", ({ subject }, others) => ({ name: uniqueName(name.trim(), subject, others), typed: true }));
     },
 
     /** @param {number} id @param {string} subject */

@@ -63,6 +63,11 @@ pub fn role(name: &str, bytes: &[u8]) -> Result<Role, Error> {
     Ok(role_of_files(files.iter().map(|(_, content)| content)))
 }
 
+/// SHA-256 of a content in hexadecimal, as in a report's `inputs`.
+pub fn digest(bytes: &[u8]) -> String {
+    tables::sha256(bytes)
+}
+
 /// Reads, places, fits every map and reports.
 ///
 /// # Errors
@@ -130,6 +135,16 @@ impl Study {
     pub fn with(&self, settings: Settings) -> Result<Self, Error> {
         let tables = self.tables.with(&settings)?.map_or_else(|| Arc::clone(&self.tables), Arc::new);
         Self::prepared(tables, settings, Some(self))
+    }
+
+    /// The same study with its files under other names, each with the one that takes its place: for what is handed on,
+    /// since names may tell whose a recording is. A name that no file has is passed over.
+    ///
+    /// # Errors
+    /// As for [`Study::open`].
+    pub fn renamed(&self, names: &[(String, String)]) -> Result<Self, Error> {
+        let (tables, settings) = self.tables.renamed(&self.settings, names)?;
+        Self::prepared(Arc::new(tables), settings, Some(self))
     }
 
     /// Other files; the search is shared where head and electrodes are the same, and the digits are those of a new study.

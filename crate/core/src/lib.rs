@@ -27,7 +27,7 @@ pub mod report;
 
 mod analyse;
 
-pub use analyse::{Decomposition, Request, Study, THUMBNAIL_SIZES, Thumbnails, analyse, compare, kind, role};
+pub use analyse::{Decomposition, Request, Study, THUMBNAIL_SIZES, Thumbnails, analyse, compare, digest, kind, role};
 pub use finding::{Choice, Code, Error, Finding, Origin, Place};
 pub use math::Vec3;
 pub use report::{MapReport, Program, Report, Settings};

@@ -52,6 +52,12 @@ pub fn role_of(name: &str, content: JsValue) -> Result<JsValue, JsValue> {
     plain(&inward_core::role(name, &bytes).map_err(|error| thrown(&error))?)
 }
 
+/// SHA-256 of a string or of bytes, in hexadecimal.
+#[wasm_bindgen]
+pub fn digest(content: JsValue) -> Result<String, JsValue> {
+    Ok(inward_core::digest(&wire::bytes(&content, "content")?.unwrap_or_default()))
+}
+
 /// Every choice among fixed options with its options in words.
 #[wasm_bindgen]
 pub fn choices() -> Result<JsValue, JsValue> {
@@ -89,6 +95,17 @@ impl Study {
     /// The same tables under other settings; nothing is read again.
     pub fn with(&self, settings: JsValue) -> Result<Study, JsValue> {
         self.0.with(wire::settings(&settings)?).map(Study).map_err(|error| thrown(&error))
+    }
+
+    /// The same study with its files under other names, `{ [name]: name }`.
+    pub fn renamed(&self, names: JsValue) -> Result<Study, JsValue> {
+        let names: Vec<_> = wire::keys(&names)
+            .map(|from| {
+                let to = wire::part(&names, &from).as_string().unwrap_or_else(|| from.clone());
+                (from, to)
+            })
+            .collect();
+        self.0.renamed(&names).map(Study).map_err(|error| thrown(&error))
     }
 
     /// Other tables as by `open`; what was prepared is used again where head and electrodes are the same.

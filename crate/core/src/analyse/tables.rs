@@ -87,6 +87,34 @@ impl Tables {
         let (inputs, files) = (self.inputs.clone(), self.files.clone());
         Ok(Some(Self { inputs, build: self.build, files, sources, wishes, understood }))
     }
+
+    /// The same files under other names, and the settings under which they mean the same.
+    pub fn renamed(&self, settings: &Settings, names: &[(String, String)]) -> Result<(Self, Settings), Error> {
+        let mut settings = settings.clone();
+        for (name, wishes) in core::mem::take(&mut settings.files) {
+            settings.files.insert(renamed(&name, names), wishes);
+        }
+        let wishes = settings.wishes();
+        let (mut inputs, mut files, mut sources) = (self.inputs.clone(), self.files.clone(), self.sources.clone());
+        inputs.iter_mut().for_each(|input| input.name = renamed(&input.name, names));
+        files.iter_mut().for_each(|file| file.name = renamed(&file.name, names));
+        sources.iter_mut().for_each(|source| source.name = renamed(&source.name, names));
+        let understood = understand(&sources, &wishes)?;
+        Ok((Self { inputs, build: self.build, files, sources, wishes, understood }, settings))
+    }
+}
+
+/// A file's name, or that of a file within it, with another in its place.
+fn renamed(name: &str, names: &[(String, String)]) -> String {
+    let own = |from: &str| name.strip_prefix(from).filter(|rest| rest.is_empty() || rest.starts_with('/'));
+    // Of two that fit, one within the other, the longer is meant.
+    let fitting = names.iter().filter_map(|(from, to)| own(from).map(|rest| (rest, to)));
+    fitting.min_by_key(|(rest, _)| rest.len()).map_or_else(|| name.to_owned(), |(rest, to)| format!("{to}{rest}"))
+}
+
+/// Hexadecimal.
+pub(super) fn sha256(bytes: &[u8]) -> String {
+    Sha256::digest(bytes).iter().map(|byte| format!("{byte:02x}")).collect()
 }
 
 fn contents(name: &str, role: Option<Role>, bytes: &[u8], wishes: &Wishes) -> Result<Vec<(String, Content)>, Error> {
@@ -106,8 +134,4 @@ fn reading(wishes: &Wishes, name: &str) -> Reading {
         delimiter: wish.and_then(|wish| wish.delimiter),
         unused: wish.is_some_and(|wish| wish.role == Some(Role::Unused)),
     }
-}
-
-fn sha256(bytes: &[u8]) -> String {
-    Sha256::digest(bytes).iter().map(|byte| format!("{byte:02x}")).collect()
 }
