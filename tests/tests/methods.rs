@@ -184,7 +184,7 @@ fn what_was_not_done_is_not_mentioned_and_references_are_those_cited() {
     );
     assert!(of(json!({ "shares": true, "threshold": 0.125 })).contains("at most 12.5 %"));
     assert!(of(json!({ "shares": true })).contains("at most 5, 10 and 15 %"));
-    assert!(of(json!({ "groups": true, "group_count": 3 })).contains("into three groups"));
+    assert!(of(json!({ "groups": true, "group_count": 3 })).contains("into three groups, a number chosen by hand"));
     assert!(!of(json!({ "shares": true, "subjects": 4 })).contains("intervals"));
     assert!(of(json!({ "shares": true, "subjects": 5 })).contains("95 % intervals"));
     assert!(of(json!({ "verdict": true })).contains("maps of each kind – one, two and a hundred dipoles"));
@@ -236,8 +236,12 @@ fn every_setting_that_changes_what_is_done_changes_the_paragraph() {
         (&none, json!({ "flip": [1] }), "with one sign turned"),
         (&none, json!({ "flip": [1, 2] }), "with two signs turned"),
         (&none, json!({ "polarity": "declared" }), "taken as meaningful"),
-        (&none, json!({ "activationSd": [2.0] }), "for one map times the standard deviation of the activation"),
-        (&none, json!({ "activationSd": [2.0, 1, 1, 1, 1, 3] }), "for six maps times"),
+        (
+            &none,
+            json!({ "activationSd": [2.0] }),
+            "multiplied by the standard deviation of the activation for one map.",
+        ),
+        (&none, json!({ "activationSd": [2.0, 1, 1, 1, 1, 3] }), "of the activation for six maps."),
         (&none, json!({ "columnsAre": "components" }), "each of six component maps in"),
         (&none, json!({ "columnsAre": "repeats" }), "each of six repeats of a map in"),
         (&none, json!({ "columnsAre": "unrelated" }), "each of six maps in"),
@@ -250,9 +254,9 @@ fn every_setting_that_changes_what_is_done_changes_the_paragraph() {
         (&region, json!({ "errors": { "skullRatio": null } }), "conductivities as modelled"),
         (&region, json!({ "errors": { "sphere": 2 } }), "2 times the standard error"),
         (&region, json!({ "errors": { "sphere": 0 } }), "sphere as modelled"),
-        (&region, json!({ "errors": { "backgroundSources": 0 } }), "independent noise so strong"),
+        (&region, json!({ "errors": { "backgroundSources": 0 } }), "independent noise strong enough"),
         (&region, json!({ "errors": { "draws": 1500 } }), "1,500 refits"),
-        (&region, json!({ "errors": { "seed": 4 } }), "drawn anew (seed 4;"),
+        (&region, json!({ "errors": { "seed": 4 } }), "drawn anew (random numbers of seed 4;"),
         (&region, json!({ "noise": { "sd": 1.5 } }), "of standard deviation 1.5 relative units at each electrode"),
         (
             &region,
@@ -264,7 +268,7 @@ fn every_setting_that_changes_what_is_done_changes_the_paragraph() {
         (
             &populations,
             json!({ "sources": { "draws": 2000, "seed": 3 } }),
-            "2,000 maps of each kind – independent noise, one, two, five, twenty and a hundred dipoles – simulated for the same electrodes and head (seed 3;",
+            "2,000 maps of each kind – independent noise, one, two, five, twenty and a hundred dipoles – simulated for the same electrodes and head (random numbers of seed 3;",
         ),
         (&populations, json!({ "sources": { "maxEccentricity": 0.8, "noise": 0.05 } }), "up to eccentricity 0.8"),
         (&populations, json!({ "sources": { "floor": [-0.25, -0.5] } }), "z = −0.25 − 0.5 y"),
@@ -401,7 +405,7 @@ fn a_map_that_cannot_be_fitted_says_why() {
         modest(&record);
     }
     let paragraph = study.methods(&Done::default()).paragraph;
-    assert!(paragraph.contains("Not fitted, being constant or lacking values: two maps."), "{paragraph}");
+    assert!(paragraph.contains("Maps that were constant or lacked values were left aside (two maps)."), "{paragraph}");
     sound(&study, "maps that cannot be fitted");
 }
 
@@ -423,12 +427,12 @@ fn every_sample_has_its_words() {
         let words = match what {
             "positions on a unit sphere" => "Positions on a unit sphere were scaled to a head radius of 88.0 mm.",
             "labels alone, one in each line" => "not measured but the standard ones of the labels",
-            "left and right exchanged" => "are the mirror image of a head",
+            "left and right exchanged" => "were the mirror image of a head",
             "names of one's own: nothing tells the axes" => "The axes of the positions were assumed",
             "BIDS: labels that tell nothing, axes by the landmarks" => "the points at ears and nose",
             "BIDS: a bad channel in the table of channels" => "; left out as declared bad: ",
-            "eyes, heart, stimuli and breath" => "Channels off the scalp had no part (",
-            "a value whose label has no position" => "Channels without a position had no part (Q9)",
+            "eyes, heart, stimuli and breath" => "Channels off the scalp were not used (",
+            "a value whose label has no position" => "Channels without a position were not used (Q9)",
             "labels with a reference of both ears" => "(recording reference by the labels: A1A2)",
             "a channel that is zero throughout: the recording reference" => {
                 "(recording reference, zero in every map and kept: "
@@ -445,6 +449,29 @@ fn every_sample_has_its_words() {
         told += 1;
     }
     assert!(told > 150, "{told}");
+}
+
+/// Files under the names of people, which are in no word of what leaves once they are renamed.
+#[test]
+fn names_of_files_are_those_that_may_leave() {
+    let (electrodes, maps) = (example("watch_electrodes.tsv"), named(["a", "b", "c", "d", "e", "f"]));
+    for maps in [maps.clone(), maps.replace('\t', ";").replace('.', ",")] {
+        let files = vec![("Jane Doe electrodes.tsv", electrodes.as_bytes()), ("jane_doe.csv", maps.as_bytes())];
+        let settings = json!({ "files": { "jane_doe.csv": { "role": "maps" } } });
+        let study = open(&Request { files, ..Request::default() }, &settings);
+        let names = [("Jane Doe electrodes.tsv", "electrodes"), ("jane_doe.csv", "maps")];
+        let names = names.map(|(from, to)| (from.to_owned(), to.to_owned()));
+        let outward = study.renamed(&names).unwrap();
+        assert_eq!(outward.methods(&done(all())), study.methods(&done(all())), "no file is named in a paper");
+        let everything = done(json!({ "region": true, "alternatives": true }));
+        for index in [0, 5] {
+            let [shown, hidden] = [&study, &outward].map(|study| text_of(&study.record(index, &everything).unwrap()));
+            assert!(shown.contains("jane_doe.csv: SHA-256") && shown.contains("Jane Doe electrodes.tsv: SHA-256"));
+            assert!(!hidden.to_lowercase().contains("jane"), "{hidden}");
+            let put = |text: &str| names.iter().fold(text.to_owned(), |text, (from, to)| text.replace(from, to));
+            assert_eq!(put(&shown), hidden, "nothing else changes");
+        }
+    }
 }
 
 #[test]

@@ -31,13 +31,18 @@ impl Study {
     /// # Errors
     /// `map-index`.
     pub fn record(&self, index: usize, done: &Done) -> Result<Record, Error> {
-        let asked = [
-            (done.region, Assessment::Region),
-            (done.alternatives, Assessment::Alternatives),
-            (done.verdict, Assessment::Verdict),
-        ];
+        let asked = [(done.region, Assessment::Region), (done.alternatives, Assessment::Alternatives)];
         let asked: Vec<Assessment> = asked.into_iter().filter(|(done, _)| *done).map(|(_, what)| what).collect();
-        let map = self.assess(index, &asked)?;
+        let mut map = self.assess(index, &asked)?;
+        if let MapReport::Fitted(map) = &mut map
+            && done.verdict
+        {
+            // Of the populations that are kept, as the page tells it, also while they are still being drawn.
+            map.verdict = map.verdict.take().or_else(|| self.verdict(map));
+            if map.verdict.is_none() {
+                self.assessed(index, map, &[Assessment::Verdict]);
+            }
+        }
         let alternatives = match &map {
             MapReport::Fitted(map) => map
                 .alternatives

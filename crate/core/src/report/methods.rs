@@ -20,15 +20,15 @@ A single equivalent current dipole was fitted to [one:one ][!one:each of {maps} 
 [components:component map][time-points:time point][repeats:repeat][unrelated:map][!one:s]\
 [time-points: of a response][repeats: of a map][span: ({span})] in a spherical head model with Inward \
 (version {version}[build:, build {build}]).\
-[unfitted: Not fitted, being constant or lacking values: {unfitted}.]\
-[several: In all, {several}[subjects: from {subjects}] were analysed; the numbers of maps and electrodes are those of one of them.]\
+[unfitted: Maps that were constant or lacked values were left aside ({unfitted}).]\
+[several: In all, {several}[subjects: from {subjects}] were analysed; the numbers of maps and electrodes given here are those of one of them.]\
 [unmixing-inverted: Maps were the columns of the pseudo-inverse of the unmixing matrix[sphering: times the sphering matrix].]\
 [baseline: The mean from {baseline} was subtracted at each electrode.]\
 [course: Global field power was the root mean square (rms) of the average-referenced map (Lehmann & Skrandies 1980).] \
 Of {placed} electrodes with a position and a value, [all:all][!all:{used}] were used\
 [excluded:; left out by hand: {excluded}][interpolated:; left out as interpolated: {interpolated}][channels-bad:; left out as declared bad: {channels-bad}].\
-[not-scalp: Channels off the scalp had no part ({not-scalp}).]\
-[values-without-position: Channels without a position had no part ({values-without-position}).] \
+[not-scalp: Channels off the scalp were not used ({not-scalp}).]\
+[values-without-position: Channels without a position were not used ({values-without-position}).] \
 Maps and lead field were referred to the average of the electrodes used\
 [reference-named: (recording reference by the labels: {reference-named})]\
 [reference-channel: (recording reference, zero in every map and kept: {reference-channel})].\
@@ -41,48 +41,48 @@ Maps and lead field were referred to the average of the electrodes used\
 [misfit: The axes of the head were found by rotating electrodes with standard names onto their standard places (Kabsch 1976; misfit {misfit}° rms).]\
 [axes-assumed: The axes of the positions were assumed (x to the right, y to the front, z up).]\
 [mirror: Left and right of the positions were exchanged.]\
-[mirrored: By their labels the positions are the mirror image of a head; they were kept as given.] \
+[mirrored: By their labels the positions were the mirror image of a head; they were kept as given.] \
 The head was [shells:modelled by {shells} concentric shells ({tissues}) with outer radii of {radii} mm and conductivities of {conductivities} S/m]\
 [!shells:one homogeneous sphere of radius {radii} mm and conductivity {conductivities} S/m] ({source}).\
 [unusual-head: It was declared unusual, so that concentric shells may not hold for it.] \
 Potentials were computed by the infinite series for a layered sphere (de Munck & Peters 1993; Zhang 1995)\
 [images:, evaluated by image sources (after Berg & Scherg 1994) with an error of at most 3·10⁻⁹ of the largest value on the scalp]. \
 Residual variance (RV), the squared norm of the map less the dipole's map over that of the map, was minimised over all positions within 0.98 of the innermost radius, \
-the moment being eliminated by variable projection (Golub & Pereyra 1973): about 1,600 positions gave up to five separate starts, which Newton steps with exact derivatives refined; the boundary was an active constraint. \
+the moment being eliminated by variable projection (Golub & Pereyra 1973): a scan of about 1,600 positions gave up to five separate starts, which Newton steps with exact derivatives refined; the boundary was an active constraint. \
 Adjusted RV was RV · (N − 1)/(N − 7), with N = {used} electrodes and {free} degrees of freedom after reference, position and moment. \
 The sign of a map was taken as [declared:meaningful and its moment as a direction][!declared:arbitrary and its moment as an axis][flips:, with {flips} turned]. \
 [microvolts:Maps were in µV and moments in nAm][volts:Maps were in V and moments in nAm][relative:The unit of the maps was not known and moments were relative]\
-[activations:, for {activations} times the standard deviation of the activation].\
+[activations:, multiplied by the standard deviation of the activation for {activations}].\
 [region: The region of uncertainty is the ellipsoid about the fitted position that held 95 % of {draws} refits: the fitted dipole was seen through heads {drawn}, and fitted again in the head as modelled.\
 [repeats: The scatter of the repeats' positions was computed too.] \
 The profile region for independent noise (Bates & Watts 1988) and Moran's I of the residual (Moran 1950; Cliff & Ord 1981) were computed for comparison.]\
-[simulated: Reference populations were {population} maps of each kind – [populations:independent noise, one, two, five, twenty][!populations:one, two] and a hundred dipoles – simulated for the same electrodes and head (seed {seed}; O'Neill 2014) and fitted likewise. \
-Their sources were {sources}, of equal moments; single dipoles were seen through an imperfect head – {errors} – with {share} % of {noise}.]\
+[simulated: Reference populations were {population} maps of each kind – [populations:independent noise, one, two, five, twenty][!populations:one, two] and a hundred dipoles – simulated for the same electrodes and head (random numbers of seed {seed}; O'Neill 2014) and fitted likewise. \
+Their sources were {sources}, of equal moments; single dipoles were seen through an imperfect head – {errors} – with {share} % of the power from {noise}.]\
 [verdict: The verdict on a map was the first that held of lone electrode (one channel with over {lone} % of its power), \
 [paired:paired (a mirrored pair preferred, see below), ]edge (position on the boundary), below the brain (position under the floor of the simulated sources), \
 not dipolar (more left over than with {ruled-out} % of simulated single dipoles, both of all and of those at about its depth), \
 dipolar (more left over than with at most {one-dipole} % of them and than with at most {others} % of simulated pairs and of mixtures of a hundred\
 [two-free:, and two free dipoles not preferred]), else undecided. These limits are conventions.]\
 [alternatives: Other explanations of a map – the best minimum elsewhere[both:, a mirrored pair of dipoles and two free dipoles]\
-[!both:[mirrored-pair: and a mirrored pair of dipoles][free-pair: and two free dipoles]] – were held against single dipoles by a parametric bootstrap (Efron & Tibshirani 1993; sequential, Besag & Clifford 1991): \
+[!both:[mirrored-pair: and a mirrored pair of dipoles][free-pair: and two free dipoles]] – were compared with single dipoles by a parametric bootstrap (Efron & Tibshirani 1993; sequential, Besag & Clifford 1991): \
 the fitted dipole was seen through up to {draws} heads [region:drawn as for the region][!region:{drawn}], and explained in the same ways.\
 [pairs: Pairs were refined by Levenberg–Marquardt steps with the moments eliminated (Marquardt 1963; Kaufman 1975) and preferred if at most 2 % of simulated single dipoles gained as much – \
 the fall of RV over the RV of the pair plus what errors of the head alone leave[both:; a mirrored pair also with at least 0.8 of the gain of two free dipoles]. \
 Pairs under 20 mm apart, or whose two maps were over 4 times as long as their sum, were refused.]]\
 [influence: Each electrode was left out in turn and the map fitted again.]\
 [what-if: Maps were fitted again with [skull:brain-to-skull ratios of 15 to 80, ]electrodes misplaced by 2 and 5 mm and other spheres.]\
-[shares: The near-dipolar share is the part of the fitted maps with an RV of at most {at} %\
+[shares: The near-dipolar share was the part of the fitted maps with an RV of at most {at} %\
 [mean:, averaged over the subjects of decompositions of one name][intervals:; from five subjects on, 95 % intervals came from 4,000 draws of subjects (expanded percentiles, Hesterberg 2015; O'Neill 2014)].]\
 [matches: Maps of two decompositions were matched one to one by the largest sum of |r| over the electrodes of both (Jonker & Volgenant 1987; Crouse 2016).]\
 [groups: Equivalent dipoles of several people, brought to one head of radius 88 mm, were grouped by Ward's hierarchy (Ward 1963) of the squared distance of places plus (30 mm)² sin² of the angle between axes, \
-into [group-count:{group-count} as chosen by hand][!group-count:as many groups as made the mean silhouette largest (Rousseeuw 1987)].] \
+into [group-count:{group-count}, a number chosen by hand][!group-count:as many groups as made the mean silhouette largest (Rousseeuw 1987)].] \
 Positions are equivalent positions in a spherical model; the published error of such models is about 10 mm (Cuffin et al. 2001).";
 
 /// Heads and noise of refits.
 const DRAWN: &str = "\
-drawn anew (seed {errors-seed}; O'Neill 2014) – {errors} –, with {noise}[where: ({sources})] \
+drawn anew (random numbers of seed {errors-seed}; O'Neill 2014) – {errors} –, with {noise}[where: ({sources})] \
 [noise-sd:of standard deviation {noise-sd} at each electrode[trials: (an average of {trials})]]\
-[!noise-sd:so strong that it explains, with the error of the head, what the fit left over]";
+[!noise-sd:strong enough to explain, with the error of the head, what the fit left over]";
 
 /// What was done beyond the fits.
 #[derive(Clone, Debug, Default, PartialEq, Deserialize)]
@@ -271,7 +271,7 @@ fn values(facts: &Facts, done: &Done) -> Values {
         "time-points" => understood.columns_are == ColumnsAre::TimePoints,
         "repeats" => understood.columns_are == ColumnsAre::Repeats,
         "unrelated" => understood.columns_are == ColumnsAre::Unrelated,
-        "one" => facts.maps == 1,
+        "one" => facts.maps - facts.unfitted == 1,
         "sphering" => understood.files.iter().any(|file| file.role == Role::Sphering),
         "course" => done.course && understood.columns_are == ColumnsAre::TimePoints,
         "all" => used == electrodes.len(),
@@ -335,7 +335,7 @@ fn values(facts: &Facts, done: &Done) -> Values {
         _ => 0,
     };
     values.extend(named! {
-        "maps" => number(facts.maps),
+        "maps" => number(facts.maps - facts.unfitted),
         "version" => program.version.to_owned(),
         "build" => program.build.unwrap_or_default().to_owned(),
         "unfitted" => counted(facts.unfitted, "map"),
