@@ -5,6 +5,7 @@ import { carriedExamples } from "./intake/examples.js";
 import { takeDropsAndPastes } from "./intake/drop.js";
 import { makeSession } from "./session/session.js";
 import { writeWords } from "./text/words.js";
+import { showAddress } from "./views/address.js";
 import { showAllDipoles } from "./views/all_dipoles.js";
 import { showAlternatives } from "./views/alternatives.js";
 import { showAnswer } from "./views/answer.js";
@@ -92,6 +93,7 @@ for (const show of [
   show(session);
 }
 takeDropsAndPastes(session, need("drop", HTMLElement));
+showAddress(session);
 
 /** When nothing else is to be done, the workers get warm on an invented map. @param {Pool} pool */
 function warmUpLater(pool) {

@@ -48,8 +48,13 @@ impl Page {
 
     /// Opens a file as a page, without waiting for more than the document.
     pub fn load(browser: Browser, file: &Path) -> Self {
+        Self::at(browser, &format!("file://{}", file.display()))
+    }
+
+    /// Opens an address, without waiting for more than the document.
+    pub fn at(browser: Browser, address: &str) -> Self {
         let session = browser.window();
-        session.go(&format!("file://{}", file.display())).unwrap();
+        session.go(address).unwrap();
         Self { session, browser }
     }
 
