@@ -728,3 +728,20 @@ test("other explanations, influence, other heads and slices are told of a map, a
   for (const told of [flat.alternatives(last), flat.influence(last), flat.whatIf(last), flat.landscape(last), flat.probe(last, [0, 0, 0], true)]) assert.equal(told, null);
   flat.close();
 });
+
+test("methods and records are told by what was done, and what is no part of that is refused", () => {
+  const study = engine.open({ electrodes, maps });
+  const plain = study.methods();
+  assert.deepEqual(study.methods({}), plain);
+  assert.deepEqual(study.methods({ region: false, threshold: null, subjects: 0 }), plain);
+  const { paragraph, references } = study.methods({ region: true, shares: true, threshold: 0.125, group_count: null });
+  assert.ok(paragraph.includes("ellipsoid") && paragraph.includes("12.5 %") && !plain.paragraph.includes("ellipsoid"));
+  assert.ok(references.length > plain.references.length);
+  const { title, parts } = study.record(0, { region: true });
+  assert.ok(title.length > 0 && parts.every(({ heading, lines }) => heading.length > 0 && lines.every((line) => typeof line === "string")));
+  assert.ok(parts[0].lines[0].includes("not a diagnostic finding"));
+  assert.equal(thrown(() => study.methods({ regions: true })).code, "settings-unknown");
+  assert.match(thrown(() => study.record(0, { regions: true })).message, /done\.regions/);
+  assert.equal(thrown(() => study.record(study.count)).code, "map-index");
+  study.close();
+});

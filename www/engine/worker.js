@@ -364,9 +364,12 @@ async function answerTask(message) {
     case "methods":
       return self.postMessage({ id, value: outward(studyOf(message.key), message.names, (study) => study.methods(message.done)) });
     case "record": {
+      const { index, populations } = message;
       const study = studyOf(message.key);
-      handOver(study, message.populations);
-      return self.postMessage({ id, value: outward(study, message.names, (named) => named.record(message.index, message.done)) });
+      handOver(study, populations);
+      // Drawing them here would take seconds.
+      const done = { ...message.done, verdict: message.done.verdict && populations !== null };
+      return self.postMessage({ id, value: outward(study, message.names, (named) => named.record(index, done)) });
     }
     case "landscape":
       return self.postMessage({ id, value: studyOf(message.key).landscape(message.index, message.at ?? undefined) });

@@ -20,44 +20,37 @@ impl Study {
     }
 }
 
-/// By hand: its own code for one small object would be larger.
+/// By hand: derived code for one small object would be larger.
 fn of(done: JsValue) -> Result<Done, JsValue> {
-    const KEYS: [&str; 14] = [
-        "region",
-        "populations",
-        "verdict",
-        "alternatives",
-        "influence",
-        "what_if",
-        "course",
-        "shares",
-        "groups",
-        "group_count",
-        "matches",
-        "threshold",
-        "decompositions",
-        "subjects",
-    ];
-    if let Some(key) = keys(&done).find(|key| !KEYS.contains(&key.as_str())) {
-        return Err(thrown(&Settings::unknown(format!("nothing of this kind belongs at `done.{key}`"))));
+    let mut read = Done::default();
+    for key in keys(&done) {
+        let value = part(&done, &key);
+        let number = value.as_f64();
+        let flag = match key.as_str() {
+            "region" => &mut read.region,
+            "populations" => &mut read.populations,
+            "verdict" => &mut read.verdict,
+            "alternatives" => &mut read.alternatives,
+            "influence" => &mut read.influence,
+            "what_if" => &mut read.what_if,
+            "course" => &mut read.course,
+            "shares" => &mut read.shares,
+            "groups" => &mut read.groups,
+            "matches" => &mut read.matches,
+            key => {
+                match key {
+                    "threshold" => read.threshold = number,
+                    "group_count" => read.group_count = number.map(|count| count as usize),
+                    "decompositions" => read.decompositions = number.unwrap_or(0.0) as usize,
+                    "subjects" => read.subjects = number.unwrap_or(0.0) as usize,
+                    _ => {
+                        return Err(thrown(&Settings::unknown(format!("nothing of this kind belongs at `done.{key}`"))));
+                    }
+                }
+                continue;
+            }
+        };
+        *flag = value.is_truthy();
     }
-    let flag = |name: &str| part(&done, name).is_truthy();
-    let number = |name: &str| part(&done, name).as_f64();
-    let count = |name: &str| number(name).unwrap_or(0.0) as usize;
-    Ok(Done {
-        region: flag("region"),
-        populations: flag("populations"),
-        verdict: flag("verdict"),
-        alternatives: flag("alternatives"),
-        influence: flag("influence"),
-        what_if: flag("what_if"),
-        course: flag("course"),
-        shares: flag("shares"),
-        groups: flag("groups"),
-        group_count: Some(count("group_count")).filter(|count| *count > 0),
-        matches: flag("matches"),
-        threshold: number("threshold"),
-        decompositions: count("decompositions"),
-        subjects: count("subjects"),
-    })
+    Ok(read)
 }
