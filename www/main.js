@@ -27,6 +27,7 @@ import { showNotes } from "./views/notes.js";
 import { showNumbers } from "./views/numbers.js";
 import { showOverview } from "./views/overview.js";
 import { showResponse } from "./views/response.js";
+import { showSaving } from "./views/saving.js";
 import { showShares } from "./views/shares.js";
 import { showSign } from "./views/sign.js";
 import { showStatus } from "./views/status.js";
@@ -62,6 +63,7 @@ for (const show of [
   showIntake,
   showExamples,
   showFailure,
+  showSaving,
   showAnswer,
   showDecompositions,
   showOverview,

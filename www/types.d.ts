@@ -1061,6 +1061,8 @@ interface Decomposition {
   subject: string;
   /** Reduction of mutual information that the user has for it. */
   information: number | null;
+  /** The map that is shown first, if it can be. */
+  begin: number;
   inputs: Inputs;
   settings: PageSettings;
   example: ExampleTitle | null;

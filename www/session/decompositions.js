@@ -22,6 +22,7 @@ export function emptyDecomposition(id) {
     typed: false,
     subject: "",
     information: null,
+    begin: 0,
     inputs: NO_INPUTS,
     settings: FIRST_SETTINGS,
     example: null,
@@ -206,7 +207,7 @@ export function mirrored(state) {
     if (file === fileOf(one.inputs)) return kept;
     const { subject } = entitiesOf(file);
     const others = decompositions.filter((other) => other !== one);
-    return { ...kept, name: uniqueName(namesOf([file])[0], subject, others), typed: false, subject, information: null };
+    return { ...kept, name: uniqueName(namesOf([file])[0], subject, others), typed: false, subject, information: null, begin: 0 };
   });
 }
 

@@ -51,6 +51,9 @@ export function makeExplanations(store, pool, fail, fitting, given) {
   /** @typedef {{ wish: number[] | null }} Wanted */
   /** Other explanations of maps of one answer, with the populations that their verdicts rest on. */
   let found = { key: -1, of: /** @type {Map<number, { alternatives: Alternatives, by: string }>} */ (new Map()) };
+  /** Maps of that answer for which it was known before the work was saved. @type {number[]} */
+  let again = [];
+  let goingOn = false;
   /** The last search that is waited for. */
   let search = 0;
   let timer = 0;
@@ -112,6 +115,32 @@ export function makeExplanations(store, pool, fail, fitting, given) {
       if (own === search) refused(answer, fault);
     } finally {
       if (own === search) tell(answer, { searching: false });
+    }
+  }
+
+  /** Of saved work, one map after the other, once nothing draws that verdicts rest on. */
+  async function lookAgain() {
+    const engine = pool();
+    const { answer, populations: drawn } = store.read();
+    const populations = given();
+    if (goingOn || engine === null || answer === null || populations === null || drawn?.state === "drawing") return;
+    goingOn = true;
+    try {
+      while (again.length > 0 && store.read().answer?.key === answer.key) {
+        const [index] = again;
+        /** @type {Alternatives | null} */
+        const alternatives = await askHelper(engine, { kind: "alternatives", key: answer.key, index, populations });
+        if (found.key !== answer.key) return;
+        again = again.filter((one) => one !== index);
+        if (alternatives === null) continue;
+        found.of.set(index, { alternatives, by: populations.name });
+        if (store.read().answer?.chosen === index) tell({ key: answer.key, chosen: index }, { alternatives });
+        judge();
+      }
+    } catch (fault) {
+      refused(answer, fault);
+    } finally {
+      goingOn = false;
     }
   }
 
@@ -214,7 +243,10 @@ export function makeExplanations(store, pool, fail, fitting, given) {
       shown = { hand: null, slices: undefined };
       search++;
       if (answer === null) return;
-      if (found.key !== answer.key) found = { key: answer.key, of: new Map() };
+      if (found.key !== answer.key) {
+        found = { key: answer.key, of: new Map() };
+        again = [];
+      }
       tell(answer, { alternatives: found.of.get(answer.chosen)?.alternatives ?? null });
     },
   );
@@ -236,10 +268,18 @@ export function makeExplanations(store, pool, fail, fitting, given) {
   );
   store.watch(({ answer }) => answer?.fitted, lookLater);
   store.watch(({ answer }) => answer?.verdicts, judge);
+  store.watch(({ populations }) => populations?.state, lookAgain);
 
   return {
-    /** Maps of the present answer whose other explanations are known. */
-    explainedMaps: () => (found.key === store.read().answer?.key ? [...found.of.keys()] : []),
+    /** Maps of the present answer whose other explanations are known, or will be. */
+    explainedMaps: () => (found.key === store.read().answer?.key ? [...new Set([...found.of.keys(), ...again])].sort((a, b) => a - b) : []),
+
+    /** Looks again for what was known of the present answer, once its reference populations are there. @param {number[]} indexes */
+    explainAgain(indexes) {
+      const { answer } = store.read();
+      again = indexes.filter((index) => index < (answer?.count ?? 0));
+      lookAgain();
+    },
 
     /** Looks for other explanations of the map in view. */
     explain: () => lookForOthers(true),

@@ -154,12 +154,12 @@ export function makeFitting(store, pool, fail) {
   }
 
   /** @param {Run} run @param {OpenedStudy} opened @param {Decomposition} one as it was when it was asked about */
-  function take(run, { preamble, count }, { inputs, settings, example, answer: before }) {
+  function take(run, { preamble, count }, { inputs, settings, example, begin, answer: before }) {
     if (inputs.maps === null) return;
     const beside = inputs.maps.role === "electrodes-and-maps" ? inputs.maps.name : null;
     const names = { electrodes: inputs.electrodes?.name ?? beside, maps: inputs.maps.name };
     run.count = count;
-    run.draft = { key: run.key, names, inputs, example, settings, preamble, count, maps: [], fitted: 0, chosen: 0, sheet: null, trust: null, verdicts: null };
+    run.draft = { key: run.key, names, inputs, example, settings, preamble, count, maps: [], fitted: 0, chosen: Math.min(begin, count - 1), sheet: null, trust: null, verdicts: null };
     if (before === null || before.count !== count || before.names.maps !== names.maps) return;
     // The same tables under other settings: the same map stays in view.
     run.draft.maps = [...before.maps];

@@ -8,6 +8,7 @@ import { makeCourses } from "./courses.js";
 import { makeFitting } from "./fitting.js";
 import { makeInquiries } from "./inquiries.js";
 import { makePopulations } from "./populations.js";
+import { makeSaving } from "./saving.js";
 import { makeSideBySide } from "./side_by_side.js";
 import { makeStore } from "./store.js";
 import { faultOf } from "../engine/fault.js";
@@ -17,6 +18,7 @@ import { MANY, recognisedInNeed } from "./recognition.js";
 import { heldBytes, isEmpty, namedFiles, NO_INPUTS, placedInputs } from "./inputs.js";
 import { isMisfit, isUnreadable } from "./help.js";
 import { differingSettings, firstLine, FIRST_SETTINGS, isOtherTable, settingsForOther } from "./settings.js";
+import { ownFormat } from "./work.js";
 import { settingsOfFiles, settingsWith, withTurned, withValueAt } from "./settings.js";
 
 /** @import { Pool } from "../engine/pool/pool.js" */
@@ -376,9 +378,17 @@ export function makeSession() {
   const { givenPopulations, ...populations } = makePopulations(store, () => client, fail, fitting);
   const explanations = makeExplanations(store, () => client, fail, fitting, givenPopulations);
 
+  const saving = makeSaving(store, inquiries.digest, {
+    step,
+    ask: () => ask(),
+    explained: explanations.explainedMaps,
+    explainAgain: explanations.explainAgain,
+  });
+
   return {
     ...inquiries,
     ...sideBySide,
+    ...saving,
     ...populations,
     ...explanations,
     ...makeCourses(store, () => client),
@@ -410,6 +420,7 @@ export function makeSession() {
      */
     async recognised(input, aside = false) {
       const engine = await started;
+      if (ownFormat(input.content) !== null) return { ...input, role: "unused" };
       const task = /** @type {const} */ ({ kind: "roleOf", name: input.name, content: input.content });
       try {
         return { ...input, role: await (aside ? engine.askAside(task) : engine.ask(task)) };
@@ -454,6 +465,9 @@ export function makeSession() {
         store.writeFirst({ arriving: false }),
       );
       const inputs = taken.flatMap((one) => (one.status === "fulfilled" ? [one.value] : []));
+      const own = inputs.filter(({ content }) => ownFormat(content) !== null);
+      // Saved work is a session of its own; beside other files it would be anybody's guess what is meant.
+      if (own.length > 0) return given.length === 1 ? saving.restore(own[0].content) : fail({ code: "work-alone", message: "", where: { file: own[0].name }, hint: "" });
       const readable = inputs.filter(({ role }) => role !== undefined);
       const spoilt = inputs.filter(({ role }) => role === undefined);
       if (inputs.length > 0) await take(readable.length > 0 ? readable : spoilt);

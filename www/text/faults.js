@@ -26,6 +26,22 @@ const PAGE_FAULTS = {
     message: "At most 64 MiB are read, and that file is larger.",
     hint: "Split the table, or leave out columns that are not needed.",
   },
+  "work-damaged": {
+    message: "That saved work is damaged: what stands in it is not what was saved.",
+    hint: "Nothing has changed here. Take another copy of the file; a tool that changes text on its way, such as mail, can damage it. The details name the place.",
+  },
+  "work-newer": {
+    message: "That work was saved by a newer version of this page, which writes more than this one can read.",
+    hint: "Nothing has changed here. Open it with the newer page, whose version is in the details.",
+  },
+  "work-other": {
+    message: "That file says what came out, not what was put in: a session cannot be taken up from it.",
+    hint: "Give the tables themselves, or the file that “Save work” has written.",
+  },
+  "work-alone": {
+    message: "Saved work takes the place of all that is there, so it has to come alone.",
+    hint: "Nothing was taken of these files. Give the saved work by itself, and others after it.",
+  },
   "page-error": {
     message: "The page stopped on an error of its own.",
     hint: "Reload it and try again. If it happens again, please report it with the details below.",

@@ -75,6 +75,12 @@ const WORDS = {
   "choice.next": "Next map of the list",
   "choice.number": "Number in the table",
 
+  work: "Saved work",
+  "work.hint": "One file with everything put in and chosen. Drop it here again, and the session is as it was. Nothing is kept by the browser.",
+  "work.save": "Save work",
+  "work.names": "with names of files and people",
+  "work.unsaved": "Not saved: closing this tab loses what was put in.",
+  "work.saved": "Saved as it stands.",
   decompositions: "Decompositions",
   "decompositions.add": "Add a decomposition",
   "decomposition.name": "Name of the decomposition",
@@ -546,6 +552,7 @@ export function usedText({ label, used }, electrodes) {
 /** Settings as they are spoken of. @type {Record<string, string>} */
 const SETTING_NAMES = {
   input: "input",
+  work: "saved work taken up",
   mapUnit: "unit of the maps",
   exclude: "electrodes left out",
   interpolated: "interpolated channels",

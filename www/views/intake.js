@@ -1,6 +1,7 @@
 /** The input column: two tables and the unit of the map. It folds to a few lines when it has done its work. */
 
 import { inputOfFile, shownText } from "../intake/files.js";
+import { ownFormat } from "../session/work.js";
 import { shortName } from "../text/figures.js";
 import { roleText, word } from "../text/words.js";
 import { make, need } from "./element.js";
@@ -38,6 +39,7 @@ function showSlot(session, kind) {
    * @param {(input: Input | null) => void} put
    */
   const take = async (input, put) => {
+    if (input !== null && ownFormat(input.content) !== null) return session.add([input]);
     const number = ++latest;
     const known = input === null ? null : await session.recognised(input);
     if (number !== latest) return;
