@@ -11,7 +11,7 @@ use std::thread::sleep;
 use std::time::{Duration, Instant};
 
 /// How long a state may take to come: never a measure of speed, only the end of hope.
-const PATIENCE: Duration = Duration::from_secs(20);
+const PATIENCE: Duration = Duration::from_secs(90);
 
 /// A file dropped on the page.
 pub struct DroppedFile<'a> {

@@ -44,7 +44,9 @@ fn of(done: JsValue) -> Result<Done, JsValue> {
                     "decompositions" => read.decompositions = number.unwrap_or(0.0) as usize,
                     "subjects" => read.subjects = number.unwrap_or(0.0) as usize,
                     _ => {
-                        return Err(thrown(&Settings::unknown(format!("nothing of this kind belongs at `done.{key}`"))));
+                        return Err(thrown(&Settings::unknown(format!(
+                            "nothing of this kind belongs at `done.{key}`"
+                        ))));
                     }
                 }
                 continue;
