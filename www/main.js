@@ -10,6 +10,7 @@ import { showAllDipoles } from "./views/all_dipoles.js";
 import { showAlternatives } from "./views/alternatives.js";
 import { showAnswer } from "./views/answer.js";
 import { showColophon } from "./views/colophon.js";
+import { copyCellsPlainly } from "./views/copying.js";
 import { showDecompositions } from "./views/decompositions.js";
 import { showElectrodes } from "./views/electrodes.js";
 import { furnish, need } from "./views/element.js";
@@ -96,6 +97,7 @@ for (const show of [
 }
 takeDropsAndPastes(session, need("drop", HTMLElement));
 showAddress(session);
+copyCellsPlainly();
 
 /** When nothing else is to be done, the workers get warm on an invented map. @param {Pool} pool */
 function warmUpLater(pool) {

@@ -179,7 +179,7 @@ fn planted_pairs_are_listed(browser: Browser) {
     let none: Vec<String> = Vec::new();
     assert_eq!(page.accessibility_findings(), none);
     let second = page.texts("#match-table tbody th")[0].split(' ').next_back().unwrap().to_owned();
-    page.click(".match-pair figure:last-child button");
+    page.click(".match-pair figure:last-of-type button");
     page.until("the second map", |page| page.text("#subject").starts_with(&second));
 }
 

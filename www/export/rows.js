@@ -32,9 +32,9 @@ export function rowFields(unit) {
   ];
 }
 
-/** Whether a spreadsheet may take a name for a formula; a plain number is none. @param {string} name */
+/** Whether a spreadsheet may take a name for a formula; a number is none, nor are several with commas between. @param {string} name */
 export function isFormula(name) {
-  return /^[=+\-@\t\r]/.test(name) && !/^[+-]?\d+([.,]\d+)?$/.test(name);
+  return /^[=+\-@\t\r]/.test(name) && !/^[+-]?\d+([.,]\d+)?(e[+-]?\d+)?(, [+-]?\d+(\.\d+)?)*$/.test(name);
 }
 
 /** @param {string} name */

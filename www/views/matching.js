@@ -61,7 +61,7 @@ export function showMatching(session) {
   }
 
   /** @param {number} rv */
-  const rvText = (rv) => (Number.isFinite(rv) ? percentText(rv) : word("match.unfitted"));
+  const rvText = (rv) => (Number.isFinite(rv) ? percentText(rv).replace(/\s%$/, "") : word("match.unfitted"));
 
   /** @param {ReturnType<typeof pairs>[number]} pair */
   const cellsOf = (pair) => [...pair.cells.slice(2), rvText(pair.rv_a), rvText(pair.rv_b)];

@@ -4,7 +4,7 @@ import { paintShares, sharesHeight } from "../draw/curves.js";
 import { letterFont, writeWrapped } from "../draw/marks.js";
 import { densityCounts, paintDensities } from "../draw/density.js";
 import { copyText } from "../export/out.js";
-import { cellsText } from "../export/table.js";
+import { cellsText, plainNumber } from "../export/table.js";
 import { typeset } from "../text/figures.js";
 import { thisMapText } from "../text/trust.js";
 import { word } from "../text/words.js";
@@ -156,7 +156,7 @@ export function showPopulations(session) {
 
   copy.addEventListener("click", async () => {
     const { heading, rows } = populationCells(session.read().answer?.trust?.populations ?? []);
-    confirmOn(copy, await copyText(cellsText([heading, ...rows])));
+    confirmOn(copy, await copyText(cellsText([heading, ...rows.map(([label, draws, ...cells]) => [label, plainNumber(draws), ...cells])])));
   });
 
   session.watch(
