@@ -108,9 +108,10 @@ fn shares_are_counted_and_saved(browser: Browser) {
     assert_eq!(page.accessibility_findings(), none);
 
     let text = page.svg("#share-tools", "inward-near-dipolar-share.svg");
-    for word in ["<title>", "<desc>", "first", "residual variance", "sans-serif"] {
+    for word in ["<title>", "<desc>", "decomposition 1", "residual variance", "sans-serif"] {
         assert!(text.contains(word), "{word} stands in the figure");
     }
+    assert!(!text.contains("first"), "a file's name is not told");
     // The browser reads it as a document of its own.
     let svg = page.session().downloads().join("inward-near-dipolar-share.svg");
     page.session().go(&format!("file://{}", svg.display())).unwrap();

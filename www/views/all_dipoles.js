@@ -1,6 +1,7 @@
 /** Every fitted dipole of a decomposition, or of all, in one head: coloured by residual variance or by decomposition. */
 
 import { paintDipoleLegend } from "../draw/dipoles.js";
+import { outwardNames } from "../session/outward.js";
 import { dipoleCountText, dipoleText, shareAtText, word } from "../text/words.js";
 import { shortName } from "../text/figures.js";
 import { need } from "./element.js";
@@ -60,9 +61,10 @@ export function showAllDipoles(session) {
     (marked) => ({ dipoles, chosen: marked ? chosenAt() : -1, byRv, shells: shellsOf(shown()[0]?.decomposition.answer) }),
     (at) => choose(at, true),
   );
-  function legendContent() {
+  /** @param {Map<number, { name: string }>} [labels] in place of their names */
+  function legendContent(labels) {
     const series = seriesOf(session.read());
-    const names = new Map(shown().map(({ decomposition: { id, name } }) => [series.get(id) ?? 0, shortName(name)]));
+    const names = new Map(shown().map(({ decomposition }) => [series.get(decomposition.id) ?? 0, shortName((labels?.get(decomposition.id) ?? decomposition).name)]));
     return {
       byRv,
       threshold: session.read().threshold,
@@ -156,7 +158,7 @@ export function showAllDipoles(session) {
     least: LEAST_VIEWS,
     paint: (width, around, penAt) => {
       const below = three.save(width, around, penAt) + 12;
-      return below + paintDipoleLegend(penAt(0, below), width, legendContent(), around);
+      return below + paintDipoleLegend(penAt(0, below), width, legendContent(outwardNames(session.read()).decompositions), around);
     },
   }), views);
 

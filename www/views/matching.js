@@ -1,6 +1,7 @@
 /** Maps of two decompositions paired one to one by the correlation of their scalp maps; a pair opens in place. */
 
 import { freshMaps } from "../session/decompositions.js";
+import { outwardNames } from "../session/outward.js";
 import { paintMapDisc } from "../draw/disc.js";
 import { copyText } from "../export/out.js";
 import { cellsText } from "../export/table.js";
@@ -14,6 +15,7 @@ import { fittedDecompositions, inOne } from "./several.js";
 import { paintOn } from "./surface.js";
 
 /** @import { Session } from "../session/session.js" */
+/** @import { MapContent } from "../draw/disc.js" */
 
 /** Pixels across the raster of a map that is looked at. */
 const PAIR_RASTER = 64;
@@ -105,7 +107,7 @@ export function showMatching(session) {
       { side: /** @type {const} */ ("a"), index: pair.index_a, row: pair.mapA, sign: 1 },
       { side: /** @type {const} */ ("b"), index: pair.index_b, row: pair.mapB, sign: Math.sign(pair.correlation) || 1 },
     ];
-    /** @type {Parameters<typeof mapRowFigure>[2]} */
+    /** @type {{ id: number, name: string, map: MapContent }[]} */
     const drawn = [];
     for (const { side, index, row: map, sign } of sides) {
       const decomposition = chosen(side);
@@ -125,12 +127,15 @@ export function showMatching(session) {
       const maps = await session.thumbnails(decomposition.id, [index], PAIR_RASTER);
       if (maps === null) continue;
       const content = { ...maps, raster: maps.measured[0], sign, words: mapWords() };
-      drawn.push({ heading: caption.textContent ?? "", map: content });
+      drawn.push({ id: decomposition.id, name: shortName(map?.name ?? ""), map: content });
       const paint = () => paintOn(canvas, false, (surface, around) => paintMapDisc(surface, content, around));
       new ResizeObserver(paint).observe(canvas);
       matchMedia("(prefers-color-scheme: dark)").addEventListener("change", paint);
     }
-    figureTools(session, cell, () => mapRowFigure("inward-pair", word("match"), drawn));
+    figureTools(session, cell, () => {
+      const labels = outwardNames(session.read()).decompositions;
+      return mapRowFigure("inward-pair", word("match"), drawn.map(({ id, name, map }) => ({ heading: `${name} · ${shortName(labels.get(id)?.name ?? "")}`, map })));
+    });
   }
 
   /** Whether all maps are fitted. @param {Decomposition | undefined} one */

@@ -4,6 +4,7 @@
  */
 
 import { freshMaps } from "../session/decompositions.js";
+import { outwardNames } from "../session/outward.js";
 import { layOutShares, paintInformation, paintShares, shareAt, sharesHeight } from "../draw/curves.js";
 import { surroundingsOf } from "../draw/canvas.js";
 import { SvgPen, svgElement } from "../draw/pen.js";
@@ -77,8 +78,11 @@ export function showShares(session) {
     words: { x: word("shares.x"), y: shareTitle(nounOf(session.read())) },
   });
 
+  /** Lines under the names that leave the page. */
+  const outwardLines = () => (summary === null ? [] : linesOf(summary, outwardNames(session.read()).decompositions));
+
   /** Each line at a residual variance, in words. @param {number} rv */
-  const valuesAt = (rv) => lines.map((line) => `${line.name} ${percentText(shareAt(line, rv))}`).join(", ");
+  const valuesAt = (rv, which = lines) => which.map((line) => `${line.name} ${percentText(shareAt(line, rv))}`).join(", ");
 
   function placeHandle() {
     const { threshold } = session.read();
@@ -115,9 +119,9 @@ export function showShares(session) {
   });
 
   /** Decompositions, or the means of those of one name, whose mutual-information reduction is given. */
-  function informed() {
+  function informed(which = lines) {
     const { threshold } = session.read();
-    return lines.flatMap((line) => {
+    return which.flatMap((line) => {
       const { name, at, information } = line;
       return information === null ? [] : [{ name, at, information, share: shareAt(line, threshold) }];
     });
@@ -147,22 +151,23 @@ export function showShares(session) {
   const decompositionOf = (member) =>
     session.read().decompositions.find(({ name, subject }) => name === member.name && subject === (member.subject ?? ""));
 
-  /** A line for each group of one name and several subjects, and for each decomposition that is in none. @param {Summary} held */
-  function linesOf({ members, groups }) {
+  /** A line for each group of one name and several subjects, and for each decomposition that is in none. @param {Summary} held @param {Map<number, { name: string, subject: string }>} [labels] in place of their names */
+  function linesOf({ members, groups }, labels) {
     const series = seriesOf(session.read());
     return members.flatMap((member, index) => {
       const decomposition = decompositionOf(member);
       if (decomposition === undefined || member.fitted === 0) return [];
       const at = series.get(decomposition.id) ?? 0;
+      const label = labels?.get(decomposition.id) ?? decomposition;
       const group = groups.find((one) => one.members.includes(index));
       if (group !== undefined) {
         const first = group.members.find((one) => members[one].fitted > 0) === index;
-        return first ? [{ name: shortName(group.name), at, ...group.curve, steps: false, information: group.information }] : [];
+        return first ? [{ name: shortName(label.name), at, ...group.curve, steps: false, information: group.information }] : [];
       }
       const rv = freshMaps(decomposition.answer).flatMap((map) => ("rv" in map ? [map.rv] : [])).sort((a, b) => a - b);
       const share = rv.map((_, k) => (k + 1) / rv.length);
-      const { subject, information } = decomposition;
-      const name = [member.name, subject].filter((part) => part).map(shortName).join(", ");
+      const { information } = decomposition;
+      const name = [label.name, label.subject].filter((part) => part).map(shortName).join(", ");
       return [{ name, at, rv, share, low: null, high: null, steps: true, information }];
     });
   }
@@ -372,7 +377,7 @@ export function showShares(session) {
   /** @type {FigurePainter} */
   const paintSaved = (width, around, penAt) => {
     const height = sharesHeight(width, lines.length);
-    paintShares({ pen: penAt(0, 0), width, height }, { ...content(), pointed: null }, around);
+    paintShares({ pen: penAt(0, 0), width, height }, { ...content(), lines: outwardLines(), pointed: null }, around);
     return height;
   };
   const title = () => shareTitle(nounOf(session.read()));
@@ -384,7 +389,7 @@ export function showShares(session) {
     return {
       name: "inward-near-dipolar-share",
       title: title(),
-      description: `${shareAtText(session.read().threshold)}: ${valuesAt(session.read().threshold)}.`,
+      description: `${shareAtText(session.read().threshold)}: ${valuesAt(session.read().threshold, outwardLines())}.`,
       width: SAVED.shares,
       paint: simulatedToo && rule !== undefined ? withRule(rule, paintSaved) : paintSaved,
     };
@@ -392,10 +397,10 @@ export function showShares(session) {
   figureTools(session, need("information-tools", HTMLElement), () => ({
     name: "inward-information",
     title: word("information"),
-    description: informed().map(({ name, share, information }) => `${name}: ${percentText(share)}, ${enteredText(information)}`).join("; "),
+    description: informed(outwardLines()).map(({ name, share, information }) => `${name}: ${percentText(share)}, ${enteredText(information)}`).join("; "),
     width: SAVED.information,
     paint: (width, around, penAt) => {
-      paintInformation({ pen: penAt(0, 0), width, height: 0.75 * width }, informationContent(informed()), around);
+      paintInformation({ pen: penAt(0, 0), width, height: 0.75 * width }, informationContent(informed(outwardLines())), around);
       return 0.75 * width;
     },
   }));
