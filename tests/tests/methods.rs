@@ -475,6 +475,17 @@ fn names_of_files_are_those_that_may_leave() {
 }
 
 #[test]
+fn names_of_any_length_are_cut() {
+    let long = "x".repeat(100_000);
+    let maps = named([&long, "b", "c", "d", "e", "f"]);
+    let electrodes = example("watch_electrodes.tsv");
+    let request = Request { electrodes: Some(electrodes.as_bytes()), maps: maps.as_bytes(), ..Request::default() };
+    let record = open(&request, &json!({})).record(0, &Done::default()).unwrap();
+    assert!(record.title.len() < 200 && text_of(&record).len() < 10_000, "{}", record.title);
+    assert!(record.title.ends_with("x…”"), "{}", record.title);
+}
+
+#[test]
 fn ten_electrodes_and_hundreds_have_their_words() {
     let series = PlainSeries::standard();
     let mut draw = Draw::from(12);

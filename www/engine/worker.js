@@ -175,6 +175,16 @@ function outward(study, names, tell) {
   }
 }
 
+/** The same whatever labels hold. @param {Methods} methods @returns {Methods} */
+function harmlessMethods({ paragraph, references }) {
+  return { paragraph: harmless(paragraph), references };
+}
+
+/** The same whatever names and labels hold. @param {TechnicalRecord} record @returns {TechnicalRecord} */
+function harmlessRecord({ title, parts }) {
+  return { title: harmless(title), parts: parts.map(({ heading, lines }) => ({ heading, lines: lines.map(harmless) })) };
+}
+
 /** Reports of maps with what is named, from one on for about so long. @param {Study} study @param {number} first @param {string[]} what @param {number} milliseconds @returns {ReportMap[]} */
 function assessWithin(study, first, what, milliseconds) {
   if (what.length === 0) return study.fitWithin(first, milliseconds);
@@ -362,14 +372,14 @@ async function answerTask(message) {
     case "what-if":
       return self.postMessage({ id, value: studyOf(message.key).whatIf(message.index) });
     case "methods":
-      return self.postMessage({ id, value: outward(studyOf(message.key), message.names, (study) => study.methods(message.done)) });
+      return self.postMessage({ id, value: harmlessMethods(outward(studyOf(message.key), message.names, (study) => study.methods(message.done))) });
     case "record": {
       const { index, populations } = message;
       const study = studyOf(message.key);
       handOver(study, populations);
       // Drawing them here would take seconds.
       const done = { ...message.done, verdict: message.done.verdict && populations !== null };
-      return self.postMessage({ id, value: outward(study, message.names, (named) => named.record(index, done)) });
+      return self.postMessage({ id, value: harmlessRecord(outward(study, message.names, (named) => named.record(index, done))) });
     }
     case "landscape":
       return self.postMessage({ id, value: studyOf(message.key).landscape(message.index, message.at ?? undefined) });

@@ -2,6 +2,7 @@
 //! no advice and finds nothing, whatever the verdict.
 
 use super::choices::option_label;
+use super::messages::clipped;
 use super::sheet::{Row, Written, head_sheet, rows, sentence};
 use super::trust::{CAUTIONS, PUBLISHED, causes, region_rows};
 use super::{Alternatives, Done, FittedMap, MapReport, Program, Report};
@@ -47,8 +48,8 @@ impl Record {
         done: &Done,
     ) -> Self {
         let name = match map {
-            MapReport::Fitted(map) => &map.name,
-            MapReport::Failed { name, .. } => name,
+            MapReport::Fitted(map) => clipped(&map.name),
+            MapReport::Failed { name, .. } => clipped(name),
         };
         let mut record =
             Self { title: format!("Technical note on an equivalent dipole: map “{name}”"), parts: Vec::new() };
@@ -77,10 +78,10 @@ impl Record {
         record.line(format!("{} ({})", head.title, head.source));
         record.rows(&head.rows);
         for (used, what) in [(true, "used"), (false, "left out")] {
-            let mut labels: Vec<&str> = Vec::new();
+            let mut labels: Vec<String> = Vec::new();
             for electrode in &report.electrodes {
                 if electrode.used == used {
-                    labels.push(&electrode.label);
+                    labels.push(clipped(&electrode.label));
                 }
             }
             if !labels.is_empty() {
