@@ -50,7 +50,7 @@ pub fn average_referenced(map: &[f64]) -> Vec<f64> {
 
 /// Whether a name or a unit speaks of a surface Laplacian: a current density, or volts per area.
 pub fn hints_at_laplacian(text: &str) -> bool {
-    let text = text.to_lowercase();
+    let text = text.to_ascii_lowercase();
     let words = || text.split(|c: char| !c.is_alphanumeric());
     text.contains("laplac")
         || words().any(|word| ["csd", "scd"].contains(&word.trim_end_matches(|c: char| c.is_ascii_digit())))

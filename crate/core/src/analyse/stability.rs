@@ -296,7 +296,7 @@ impl Study {
 fn without_fluid(shells: &Shells) -> Option<Shells> {
     let specs = shells.specs();
     let fluid = specs.iter().position(|shell| {
-        let name = shell.tissue.to_lowercase();
+        let name = shell.tissue.to_ascii_lowercase();
         name == "csf" || name.contains("cerebrospinal")
     })?;
     let inner = fluid.checked_sub(1)?;

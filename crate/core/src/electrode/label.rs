@@ -20,14 +20,14 @@ impl Label {
     pub fn electrode(&self) -> String {
         let reading = Reading::of(self);
         match reading.kind {
-            Kind::Site(site) => site.name.to_lowercase(),
+            Kind::Site(site) => site.name.to_ascii_lowercase(),
             _ => reading.key,
         }
     }
 
     /// What labels are compared by.
     pub fn key(&self) -> String {
-        self.0.to_lowercase()
+        self.0.to_ascii_lowercase()
     }
 }
 

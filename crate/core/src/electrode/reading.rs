@@ -70,7 +70,7 @@ pub enum Second {
 impl Second {
     /// What second parts are compared by.
     pub fn key(&self) -> String {
-        self.text().to_lowercase()
+        self.text().to_ascii_lowercase()
     }
 
     /// As it is said.
@@ -211,7 +211,7 @@ impl Reading {
         // A prime or a star marks a place near a site: another name.
         let parts = |c: char| !(c.is_alphanumeric() || matches!(c, '\'' | '′' | '"' | '*'));
         let mut words: Vec<&str> = text.split(parts).filter(|word| !word.is_empty()).collect();
-        let is = |word: &str, among: &[&str]| among.contains(&word.to_lowercase().as_str());
+        let is = |word: &str, among: &[&str]| among.contains(&word.to_ascii_lowercase().as_str());
         while words.len() > 1 && words.last().is_some_and(|word| is(word, &UNITS)) {
             words.pop();
         }
@@ -233,7 +233,7 @@ impl Reading {
                 // An old name beside the new one, as in `T7/T3`, is no second site.
                 let same = |second: &Second| matches!(second, Second::Site(other) if other.name == site.name);
                 let second = second(rest).filter(|second| !same(second));
-                return Self { key: name.to_lowercase(), name, kind: Kind::Site(site), second };
+                return Self { key: name.to_ascii_lowercase(), name, kind: Kind::Site(site), second };
             }
         }
         let mut core = words.as_slice();
@@ -243,13 +243,14 @@ impl Reading {
         {
             core = before;
         }
-        let joined = core.concat().to_lowercase();
+        let joined = core.concat().to_ascii_lowercase();
         let landmark =
             LANDMARKS.iter().find(|(name, _)| *name == joined).map(|(_, landmark)| Kind::Landmark(*landmark));
         let kind =
             landmark.or_else(|| core.iter().find_map(|word| other(word)).map(Kind::Other)).unwrap_or(Kind::Unknown);
         // A prefix is part of a name that is nothing without it: `EEG 001`.
-        let key = whole.strip_suffix(&words[core.len().min(words.len())..].concat()).unwrap_or(&whole).to_lowercase();
+        let key =
+            whole.strip_suffix(&words[core.len().min(words.len())..].concat()).unwrap_or(&whole).to_ascii_lowercase();
         Self { name: label.to_string(), key, kind, second: None }
     }
 }
@@ -262,12 +263,12 @@ fn found(name: &str) -> Option<&'static StandardSite> {
 fn second(words: &[&str]) -> Option<Second> {
     let text = words.concat();
     let known = found(&text);
-    let reference = |word: &&str| REFERENCES.contains(&word.to_lowercase().as_str());
+    let reference = |word: &&str| REFERENCES.contains(&word.to_ascii_lowercase().as_str());
     match known {
         _ if words.is_empty() => None,
         Some(site) if site.grade == Grade::Approximate => Some(Second::Reference(site.name.clone())),
         Some(site) => Some(Second::Site(site)),
-        None if words.iter().any(reference) || REFERENCES.contains(&text.to_lowercase().as_str()) => {
+        None if words.iter().any(reference) || REFERENCES.contains(&text.to_ascii_lowercase().as_str()) => {
             Some(Second::Reference(text))
         }
         None => Some(Second::Unknown(text)),
@@ -275,7 +276,7 @@ fn second(words: &[&str]) -> Option<Second> {
 }
 
 fn other(word: &str) -> Option<Other> {
-    let word = word.to_lowercase();
+    let word = word.to_ascii_lowercase();
     let base = word.trim_end_matches(|c: char| c.is_ascii_digit());
     let part = PARTS.iter().find(|(part, _)| word.contains(part)).map(|(_, other)| *other);
     part.or_else(|| WORDS.iter().find(|(_, words)| words.contains(&base)).map(|(other, _)| *other))
@@ -333,7 +334,7 @@ mod tests {
             "Fp1\u{0}",
         ] {
             assert_eq!(site_of(text), Some("Fp1"), "{text}");
-            assert!(read(text).name.to_lowercase().starts_with("fp"), "{text}");
+            assert!(read(text).name.to_ascii_lowercase().starts_with("fp"), "{text}");
         }
         for (old, new) in [("T3", "T7"), ("EEG T4-Ref", "T8"), ("t5", "P7"), ("T6.", "P8")] {
             assert_eq!(site_of(old), Some(new));

@@ -130,9 +130,9 @@ fn even(odd: &str) -> String {
 /// The site that a name stands for, upper and lower case alike; T3 to T6 are not among the names, see [`modern_name`].
 pub fn site(name: &str) -> Option<&'static StandardSite> {
     static INDEX: LazyLock<HashMap<String, usize>> = LazyLock::new(|| {
-        standard_sites().iter().enumerate().map(|(index, site)| (site.name.to_lowercase(), index)).collect()
+        standard_sites().iter().enumerate().map(|(index, site)| (site.name.to_ascii_lowercase(), index)).collect()
     });
-    INDEX.get(&name.to_lowercase()).map(|&index| &standard_sites()[index])
+    INDEX.get(&name.to_ascii_lowercase()).map(|&index| &standard_sites()[index])
 }
 
 /// The name that took the place of one of 1958.

@@ -181,7 +181,7 @@ fn site(reading: &Reading) -> Option<Vec3> {
 
 fn site_key(reading: &Reading) -> Option<String> {
     match reading.kind {
-        Kind::Site(site) => Some(site.name.to_lowercase()),
+        Kind::Site(site) => Some(site.name.to_ascii_lowercase()),
         _ => None,
     }
 }

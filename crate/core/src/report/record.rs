@@ -192,7 +192,7 @@ mod tests {
     #[test]
     fn a_record_states_and_asks_for_nothing() {
         for &code in Code::ALL {
-            let told = stated(&message(&Finding::new(code))).to_lowercase();
+            let told = stated(&message(&Finding::new(code))).to_ascii_lowercase();
             for word in ["please", "should", " check ", "give a"] {
                 assert!(!told.contains(word), "{told}");
             }

@@ -447,7 +447,9 @@ pub(super) fn row(
 
 pub(super) fn capitalised(word: &str) -> String {
     let mut letters = word.chars();
-    letters.next().map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
+    letters
+        .next()
+        .map_or_else(String::new, |first| core::iter::once(first.to_ascii_uppercase()).chain(letters).collect())
 }
 
 fn triple(vector: Vec3, text: fn(f64) -> String) -> String {

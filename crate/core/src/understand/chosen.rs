@@ -408,7 +408,7 @@ fn labels_of(grid: &Grid<'_>, wishes: &Wishes, found: &Found) -> Result<Vec<Labe
 
 /// Whether a file or one of its parts is named as unmixing matrices usually are.
 fn hints_at_unmixing(name: &str) -> bool {
-    let name = name.to_lowercase();
+    let name = name.to_ascii_lowercase();
     let last = name.rsplit('.').next().unwrap_or_default();
     last == "w" || ["unmix", "weights", "demix"].iter().any(|word| name.contains(word))
 }

@@ -159,7 +159,7 @@ pub(super) fn read_maps(
 /// no name or none of a channel, and rises.
 fn names_maps(grid: &Grid<'_>, columns: &[usize], keys: &HashSet<String>) -> bool {
     let &[first, _, ..] = columns else { return false };
-    let name = grid.name(first).trim().to_lowercase();
+    let name = grid.name(first).trim().to_ascii_lowercase();
     let value = |row: usize| grid.number(row, first);
     let rises = (1..grid.height()).all(|row| value(row - 1).zip(value(row)).is_some_and(|(one, next)| one < next));
     let says = name.starts_with("time") || ["t", "latency", "sample", "index"].contains(&name.as_str());
