@@ -32,26 +32,99 @@ fn findings(page: &Page, surroundings: Surroundings) -> Vec<String> {
     found
 }
 
-/// Nothing against the page in any surroundings, empty and answered; the maps take the theme; at 400 % nothing is cut off.
-fn no_findings_in_any_surroundings(browser: Browser) {
-    let all = [
-        ("light", PLAIN),
-        ("dark", Surroundings { dark: true, ..PLAIN }),
-        ("forced colours", Surroundings { forced_colours: true, ..PLAIN }),
-        ("400 per cent", Surroundings { zoom: 4, ..PLAIN }),
-    ];
-    let page = Page::open(browser);
-    for (name, surroundings) in all {
+const SURROUNDINGS: [(&str, Surroundings); 4] = [
+    ("light", PLAIN),
+    ("dark", Surroundings { dark: true, ..PLAIN }),
+    ("forced colours", Surroundings { forced_colours: true, ..PLAIN }),
+    ("400 per cent", Surroundings { zoom: 4, ..PLAIN }),
+];
+
+/// Nothing against a state of the page in any surroundings; at 400 % nothing is cut off.
+fn walk(page: &Page, state: &str) {
+    for (name, surroundings) in SURROUNDINGS {
         page.surround(surroundings);
-        assert_eq!(findings(&page, surroundings), none(), "empty, {name}");
-        assert_eq!(wider_than_the_window(&page), json!([]), "empty, {name}");
-        page.picture(&format!("empty {name}"));
+        assert_eq!(findings(page, surroundings), none(), "{state}, {name}");
+        assert_eq!(wider_than_the_window(page), json!([]), "{state}, {name}");
+        // A part of a page that is several windows high is enough to look at.
+        page.picture(&format!("{state} {name}"));
     }
     page.surround(PLAIN);
+}
+
+fn unfold(page: &Page) {
+    page.value("for (const panel of document.querySelectorAll('details')) panel.open = true");
+}
+
+/// One map, then many and two decompositions, with every panel open: nothing against the page.
+fn no_findings_with_every_panel_open(browser: Browser) {
+    let page = Page::open(browser);
+    unfold(&page);
+    walk(&page, "empty, unfolded");
+    page.click("#empty [data-example='lamp']");
+    page.wait_for_verdict();
+    unfold(&page);
+    page.until("slices, influence and what if", |page| {
+        page.text("#slices-sentence").ends_with('.')
+            && page.exists("#influence-figure svg")
+            && page.exists("#what-if-table tbody tr")
+    });
+    page.focus("#slice-above");
+    page.press("\u{e014}");
+    page.click("#hand-keep");
+    page.click("#maps-tools .figure-save");
+    walk(&page, "one map, unfolded");
+
+    // The list of examples stands in a panel that is open.
+    page.value("document.querySelector('#intake-examples [data-example=night]').click()");
+    page.until("all maps of both", |page| page.rests() && page.visible("#shares") && page.visible("#matching"));
+    unfold(&page);
+    page.until("all panels", |page| {
+        ["#match-table tbody tr", "#share-table tbody tr", "#groups-maps canvas", "#all-numbers tbody tr"]
+            .iter()
+            .all(|part| page.exists(part))
+    });
+    page.focus("#match-table tbody button");
+    page.press(" ");
+    page.until("a pair", |page| page.texts(".match-pair figure").len() == 2);
+    page.click("#share-tools .figure-save");
+    walk(&page, "two decompositions, unfolded");
+    // What a picture is of is told by its name: extremes, sign and place.
+    for canvas in ["#map-measured", ".match-pair canvas", "#groups-maps canvas"] {
+        let name = page.attribute(canvas, "aria-label");
+        assert!(name.contains("most positive") && name.contains("most negative"), "{canvas}: {name:?}");
+    }
+    let nameless = page.value(
+        "return [...document.querySelectorAll('canvas, svg')].filter((e) => e.getClientRects().length && !e.closest('[aria-hidden=true]')\
+         && !(e.getAttribute('aria-label') ?? '').trim()).map((e) => e.id || e.parentElement.id || e.outerHTML.slice(0, 90))",
+    );
+    assert_eq!(nameless, json!([]), "pictures without a name");
+
+    // A file that is none, while all that is open.
+    page.drop_files(&[inward_tests::DroppedFile { name: "letter.tsv", text: "Dear reader,\nno numbers here.\n" }]);
+    page.until("a failure", |page| page.visible("#failure") || page.state() == "failed");
+    assert_eq!(page.accessibility_findings(), none(), "failure, unfolded");
+    assert_eq!(wider_than_the_window(&page), json!([]), "failure, unfolded");
+}
+
+/// While maps are fitted.
+fn no_findings_while_busy(browser: Browser) {
+    let page = Page::open(browser);
+    // Workers that never answer: the page waits for as long as it takes to look at it.
+    page.value("Worker.prototype.postMessage = () => {}");
+    page.click("#empty [data-example='lamp']");
+    page.until("a page that waits", |page| page.state() == "busy");
+    page.until("the progress", |page| page.visible("progress"));
+    walk(&page, "busy");
+}
+
+/// Nothing against the page in any surroundings, empty and answered; the maps take the theme; at 400 % nothing is cut off.
+fn no_findings_in_any_surroundings(browser: Browser) {
+    let page = Page::open(browser);
+    walk(&page, "empty");
     page.click("#empty [data-example='lamp']");
     page.wait_for_answer();
     let mut pictures = std::collections::BTreeMap::new();
-    for (name, surroundings) in all {
+    for (name, surroundings) in SURROUNDINGS {
         page.surround(surroundings);
         assert_eq!(findings(&page, surroundings), none(), "answered, {name}");
         assert_eq!(wider_than_the_window(&page), json!([]), "answered, {name}");
@@ -224,6 +297,8 @@ fn stray_errors_end_in_the_panel(browser: Browser) {
 
 in_both_browsers!(
     no_findings_in_any_surroundings,
+    no_findings_with_every_panel_open,
+    no_findings_while_busy,
     the_focus_is_visible,
     reduced_motion_is_kept,
     paper_holds_the_answer,

@@ -7,6 +7,7 @@ import { layOutHead, LEAST_WIDTH, paintCircles, paintPeg, paintShells, seenFrom 
 import { letterFont, writeHaloed } from "./marks.js";
 import { outlineOf, strokeOutline } from "./region.js";
 import { rvColour, RV_MOST, seriesColour, seriesDash } from "./series.js";
+import { mostText } from "../text/figures.js";
 
 /** @import { Surface, Surroundings } from "./canvas.js" */
 /** @import { Side, Standpoint } from "./head.js" */
@@ -176,7 +177,7 @@ export function paintDipoleLegend(pen, width, { byRv, threshold, names, words },
   pen.strokeStyle = around.ink;
   pen.lineWidth = 1.2;
   /** @type {[number, string][]} */
-  const ticks = [[0, "0"], [RV_MOST, `${levelText(RV_MOST)} and above`]];
+  const ticks = [[0, "0"], [RV_MOST, mostText(levelText(RV_MOST))]];
   if (threshold > 0.03 && threshold < 0.75 * RV_MOST) ticks.splice(1, 0, [threshold, levelText(threshold)]);
   for (const [rv, text] of ticks) {
     const x = left + ((right - left) * rv) / RV_MOST;

@@ -49,6 +49,11 @@ export function timeText(time, unit) {
   return `${enteredText(time).replace("-", MINUS)}${NO_BREAK}${unit}`.trim();
 }
 
+/** The end of a scale that has more beyond it. @param {string} level */
+export function mostText(level) {
+  return `${level} and above`;
+}
+
 /** A number as it stands in an entry field. @param {number} value */
 export function enteredText(value) {
   return String(Number(value.toPrecision(6)));

@@ -362,6 +362,14 @@ export function word(code) {
 /** What stands around a map. */
 export const mapWords = () => ({ front: word("map.front"), left: word("map.left"), right: word("map.right"), above: word("map.above") });
 
+/** Where a map is most positive and most negative, as shares of its width and height from the left and the front. @param {[number, number][]} ends */
+export function extremesText(ends) {
+  /** @param {[number, number]} end */
+  const place = ([across, down]) => `${["front", "middle", "back"][Math.floor(3 * down)]}-${["left", "midline", "right"][Math.floor(3 * across)]}`;
+  const [most, least] = ends.map(place);
+  return `most positive ${most}, most negative ${least}`;
+}
+
 /** @param {{ width: number, height: number }} dots */
 function dotsText({ width, height }) {
   return `${width.toLocaleString("en-GB")} × ${height.toLocaleString("en-GB")} pixels`;

@@ -10,7 +10,7 @@ import { mapWords, shareAtText, word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { make, need, rewrite } from "./element.js";
 import { figureTools, showFigure } from "./figure.js";
-import { mapRowFigure } from "./plates.js";
+import { mapRowFigure, rasterAlt } from "./plates.js";
 import { keepTyped } from "./setting.js";
 import { fittedDecompositions, inOne } from "./several.js";
 import { keepPainted, paintOn } from "./surface.js";
@@ -153,6 +153,7 @@ export function showGroups(session) {
       figure.prepend(canvas);
       const mean = { raster, size: MEAN_RASTER, outline: RIM, sign: 1 / most, words: mapWords() };
       drawn.push({ heading: groupName(at), map: mean });
+      canvas.setAttribute("aria-label", rasterAlt(`${word("groups.mean-of")} ${groupName(at)}`, mean));
       means.push((printing) => paintOn(canvas, printing, (surface, around) => paintMapDisc(surface, mean, around)));
       means[means.length - 1](false);
     }
@@ -311,7 +312,7 @@ export function showGroups(session) {
       heads,
       ...(found?.groups ?? []).map(({ cells }, at) => [String(at + 1), ...cells.flatMap((cell) => cell.split(", "))]),
       [],
-      [...["group", "person", "recording", "map"].map((code) => word(`groups.${code}`)), ...PLACE_COLUMNS.map((column) => `${column} (own head)`), "RV, %"],
+      [...["group", "person", "recording", "map"].map((code) => word(`groups.${code}`)), ...PLACE_COLUMNS.map((column) => `${column} (${word("groups.own-head")})`), "RV, %"],
       ...each,
     ])));
   });

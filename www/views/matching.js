@@ -10,7 +10,7 @@ import { mapWords, matchedText, unmatchedText, word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { make, need } from "./element.js";
 import { figureTools } from "./figure.js";
-import { mapRowFigure } from "./plates.js";
+import { mapRowFigure, rasterAlt } from "./plates.js";
 import { fittedDecompositions, inOne } from "./several.js";
 import { paintOn } from "./surface.js";
 
@@ -128,6 +128,7 @@ export function showMatching(session) {
       if (maps === null) continue;
       const content = { ...maps, raster: maps.measured[0], sign, words: mapWords() };
       drawn.push({ id: decomposition.id, name: shortName(map?.name ?? ""), map: content });
+      canvas.setAttribute("aria-label", rasterAlt(caption.textContent ?? "", content));
       const paint = () => paintOn(canvas, false, (surface, around) => paintMapDisc(surface, content, around));
       new ResizeObserver(paint).observe(canvas);
       matchMedia("(prefers-color-scheme: dark)").addEventListener("change", paint);

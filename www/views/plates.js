@@ -4,7 +4,7 @@ import { paintEquation, paintMapRow, paintSlices, paintViews } from "../draw/pla
 import { leastOf } from "../draw/landscape.js";
 import { percentText, stretchText, typeset } from "../text/figures.js";
 import { beginning } from "../text/trust.js";
-import { mapWords, scaleText, standpointText, symbolOf, word } from "../text/words.js";
+import { extremesText, mapWords, scaleText, standpointText, symbolOf, word } from "../text/words.js";
 
 /** @import { HeadContent, Side, Standpoint } from "../draw/head.js" */
 /** @import { OtherKind, RegionMarks } from "../draw/region.js" */
@@ -155,9 +155,18 @@ export function slicesFigure({ figure }, landscape, hand = null) {
   };
 }
 
+/** A map without electrodes, in words. @param {string} name @param {MapContent} map */
+export function rasterAlt(name, { raster, size, sign }) {
+  const ends = [sign, -sign].map((turn) => {
+    const best = raster.reduce((best, value, at) => (Number.isNaN(value) || turn * value <= turn * raster[best] ? best : at), raster.findIndex((value) => !Number.isNaN(value)));
+    return /** @type {[number, number]} */ ([((best % size) + 0.5) / size, (Math.floor(best / size) + 0.5) / size]);
+  });
+  return `${name}, ${word("map.above")}: ${extremesText(ends)}`;
+}
+
 /** Maps side by side, each on its own scale. @param {string} name @param {string} title @param {{ heading: string, map: MapContent }[]} maps @returns {FigureParts | null} */
 export function mapRowFigure(name, title, maps) {
   if (maps.length === 0) return null;
-  const description = `${maps.map(({ heading }) => heading).join(", ")}. ${word("figure.own-scales")}`;
+  const description = [...maps.map(({ heading, map }) => `${rasterAlt(heading, map)}.`), word("figure.own-scales")].join(" ");
   return { name, title, description, width: Math.min(4, maps.length) * 180, least: 260, paint: (width, around, penAt) => paintMapRow(width, around, penAt, maps) };
 }

@@ -159,6 +159,7 @@ export function showResponse(session) {
     const picture = session.read().answer?.sheet?.picture;
     canvas.classList.toggle("waits", picture === undefined);
     if (picture === undefined) return;
+    canvas.setAttribute("aria-label", typeset(session.read().answer?.sheet?.alt.measured ?? ""));
     paintOn(canvas, printing, (surface, around) => paintMapDisc(surface, { ...picture, raster: picture.measured, sign: 1, words: mapWords() }, around));
   }
 

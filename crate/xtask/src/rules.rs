@@ -1,7 +1,7 @@
 //! Who may import whom.
 
 use crate::bundle::Modules;
-use crate::lexer::{Token, tokens};
+use crate::lexer::{Kind, Token, tokens};
 use crate::workspace::{Workspace, files, read, slashed, text};
 use anyhow::{Context, Result, bail};
 
@@ -132,7 +132,35 @@ fn in_bindings(workspace: &Workspace) -> Result<Vec<String>> {
     Ok(broken)
 }
 
-/// Only `engine/` touches the module, and no view reaches for the engine.
+/// Folders of the page that have no words of their own.
+const WITHOUT_WORDS: [&str; 4] = ["draw/", "export/", "intake/", "views/"];
+
+/// Whether a piece of text is for reading: three words one after the other, or two that begin or end like a sentence.
+fn is_sentence(text: &str) -> bool {
+    let text = text.trim_matches(|one| "\"'`{}$ ".contains(one));
+    let is_word = |word: &str| word.len() > 1 && word.chars().all(|one| one.is_alphabetic() || "’'".contains(one));
+    let mut run = 0;
+    let longest = text.split(' ').map(|word| {
+        let bare = word.trim_end_matches([',', '.', ':', ';', '?', '!']);
+        run = if is_word(bare) { run + 1 } else { 0 };
+        run
+    });
+    let longest = longest.max().unwrap_or_default();
+    let capital = text.chars().next().is_some_and(char::is_uppercase) && !text.contains("::");
+    longest >= 3 || (longest == 2 && (capital || text.ends_with(['.', '?', '!'])))
+}
+
+/// Sentences of the page stand in `text/`; what is thrown at programmers may stand where it is thrown.
+fn sentences(path: &str, found: &[Token]) -> Vec<String> {
+    let at = |place: Option<usize>| place.and_then(|place| found.get(place));
+    let thrown = |place: usize| at(place.checked_sub(2)).is_some_and(|token| token.text.ends_with("Error"));
+    let told = found.iter().enumerate().filter(|(place, token)| {
+        matches!(token.kind, Kind::Quoted | Kind::Template) && is_sentence(token.text) && !thrown(*place)
+    });
+    told.map(|(_, token)| format!("{path}:{}: words stand in text/: {}", token.line, token.text)).collect()
+}
+
+/// Only `engine/` touches the module, no view reaches for the engine, and words stand in `text/`.
 fn in_page<'a>(path: &str, script: &str, imports: impl Iterator<Item = (&'a str, usize)>) -> Result<Vec<String>> {
     let mut broken = Vec::new();
     if path.starts_with("views/") {
@@ -145,6 +173,9 @@ fn in_page<'a>(path: &str, script: &str, imports: impl Iterator<Item = (&'a str,
         broken.extend(
             found.iter().find(touches).map(|token| format!("{path}:{}: only engine/ touches wasm", token.line)),
         );
+        if WITHOUT_WORDS.iter().any(|folder| path.starts_with(folder)) {
+            broken.extend(sentences(path, &found));
+        }
     }
     Ok(broken)
 }
@@ -197,5 +228,27 @@ mod tests {
         );
         assert_eq!(found("session/a.js", "// WebAssembly", &[("engine/b.js", 3)]), [""; 0]);
         assert_eq!(found("engine/a.js", "WebAssembly", &[]), [""; 0]);
+    }
+
+    #[test]
+    fn planted_sentences_are_found() {
+        let found = |path, script: &str| in_page(path, script, std::iter::empty()).unwrap();
+        for told in [
+            "make(\"p\", \"Nothing found.\");",
+            "f(`${count} maps were left out`);",
+            "title = 'the map in view';",
+            "x = \"Left over\";",
+        ] {
+            assert_eq!(found("views/a.js", &format!("\n{told}")).len(), 1, "{told}");
+            assert_eq!(found("text/a.js", told), [""; 0]);
+        }
+        for other in [
+            "make(\"p\", \"\", { class: \"small quiet\" });",
+            "throw new TypeError(\"no canvas to draw on\");",
+            "table.querySelector(`tbody tr[data-index=\"${at}\"] button`);",
+            "pen.font = \"11px sans-serif\"; // Nothing is told here.",
+        ] {
+            assert_eq!(found("views/a.js", other), [""; 0]);
+        }
     }
 }
