@@ -42,7 +42,7 @@ fn a_session_comes_back_digit_by_digit(browser: Browser) {
     ]);
     page.until("both", |page| page.rests() && page.texts("#decomposition-list > li").len() == 2);
     click(&page, "#electrode-table tbody input");
-    page.until("an electrode out", |page| page.rests() && page.text("#electrodes-out") != "");
+    page.until("an electrode out", |page| page.rests() && !page.text("#electrodes-out").is_empty());
     click(&page, "#ledger [data-index='3']");
     page.until("the fourth map", |page| page.text("#subject").starts_with("two horns"));
     click(&page, "#flip");

@@ -155,11 +155,18 @@ fn the_focus_is_visible(browser: Browser) {
     let page = answered(browser);
     // What is written anew takes the focus with it.
     page.wait_for_verdict();
+    unfold(&page);
+    page.until("all panels", |page| {
+        page.text("#slices-sentence").ends_with('.')
+            && page.exists("#influence-table tbody tr")
+            && page.exists("#what-if-table tbody tr")
+    });
+    page.click("#maps-tools .figure-save");
     for surroundings in [PLAIN, Surroundings { forced_colours: true, ..PLAIN }] {
         page.surround(surroundings);
         page.focus("#main");
         let mut seen = std::collections::BTreeSet::new();
-        for _ in 0..200 {
+        for _ in 0..400 {
             page.press(&inward_tests::TAB.to_string());
             let found = page.value(
                 "const e = document.activeElement; if (!e || e === document.body) return null;\
@@ -175,7 +182,7 @@ fn the_focus_is_visible(browser: Browser) {
                 break;
             }
         }
-        assert!(seen.len() > 25, "{} stops", seen.len());
+        assert!(seen.len() > 100, "{} stops", seen.len());
     }
 }
 
