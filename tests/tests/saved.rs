@@ -51,7 +51,7 @@ fn a_session_comes_back_digit_by_digit(browser: Browser) {
     click(&page, "#explain");
     page.until("other explanations", |page| page.visible("#alternatives-found"));
     assert_eq!(page.value(leaves), json!(true), "a warning before it is lost");
-    assert_eq!(page.text("#work-state"), "Not saved: closing this tab loses what was put in.");
+    assert_eq!(page.text("#work-state"), "Not saved yet: it goes with this tab.");
     let work = save(&page);
     assert_eq!(page.text("#work-state"), "Saved as it stands.");
     assert_eq!(page.value(leaves), json!(false), "saved");

@@ -79,7 +79,7 @@ const WORDS = {
   "work.hint": "One file with everything put in and chosen. Drop it here again, and the session is as it was. Nothing is kept by the browser.",
   "work.save": "Save work",
   "work.names": "with names of files and people",
-  "work.unsaved": "Not saved: closing this tab loses what was put in.",
+  "work.unsaved": "Not saved yet: it goes with this tab.",
   "work.saved": "Saved as it stands.",
   decompositions: "Decompositions",
   "decompositions.add": "Add a decomposition",
