@@ -227,7 +227,7 @@ function rastersOf(sheet) {
  * @param {WorkerTask & { kind: "report" }} task
  * @param {(done: number, total: number) => void} tell
  */
-async function reportOf({ key, names, chosen, explained, populations }, tell) {
+async function reportBlob({ key, names, chosen, explained, populations }, tell) {
   const study = studyOf(key);
   handOver(study, populations);
   const total = study.count;
@@ -313,7 +313,7 @@ async function answerTask(message) {
       return self.postMessage({ id, value: first.matches(second, message.own, message.others, message.names) });
     }
     case "report":
-      return self.postMessage({ id, value: await reportOf(message, (done, total) => self.postMessage({ id, progress: { done, total } })) });
+      return self.postMessage({ id, value: await reportBlob(message, (done, total) => self.postMessage({ id, progress: { done, total } })) });
     case "comparison": {
       const { keys, members, names, settings } = message;
       /** @type {ComparedStudy[]} */
