@@ -17,8 +17,11 @@ function scriptText() {
 }
 
 function load() {
+  // The file as it came, while nothing has changed it: the build sees to it that this is its text again.
+  const file = `<!doctype html>\n${document.documentElement.outerHTML}`;
   const text = unpackedText(document.getElementById("script")?.textContent ?? "");
   const script = document.createElement("script");
+  Object.assign(script, { file });
   script.text = scriptText().createScript(text);
   document.body.append(script);
   // It runs at once and takes this paragraph away, or is refused without a word.

@@ -19,6 +19,7 @@ import { showFailure } from "./views/failure.js";
 import { showGroups } from "./views/groups.js";
 import { showHead } from "./views/head.js";
 import { showHeadViews } from "./views/head_views.js";
+import { showHost } from "./views/host.js";
 import { showInfluence } from "./views/influence.js";
 import { showIntake } from "./views/intake.js";
 import { showLandscape } from "./views/landscape.js";
@@ -29,6 +30,7 @@ import { showNumbers } from "./views/numbers.js";
 import { showOverview } from "./views/overview.js";
 import { showResponse } from "./views/response.js";
 import { showSaving } from "./views/saving.js";
+import { showSealed } from "./views/sealed.js";
 import { showShares } from "./views/shares.js";
 import { showSign } from "./views/sign.js";
 import { showStatus } from "./views/status.js";
@@ -91,11 +93,13 @@ for (const show of [
   showNotes,
   showUndo,
   showColophon,
+  showSealed,
   showTerms,
 ]) {
   show(session);
 }
 takeDropsAndPastes(session, need("drop", HTMLElement));
+showHost(session);
 showAddress(session);
 copyCellsPlainly();
 

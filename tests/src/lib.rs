@@ -22,6 +22,7 @@ mod program;
 mod series;
 mod session;
 mod shapes;
+mod site;
 mod surroundings;
 mod tables;
 pub mod truth;
@@ -46,6 +47,7 @@ pub use place::{data, dist_file, example, sample, samples, screenshot_file, test
 pub use series::PlainSeries;
 pub use session::{CONTROL, Element, Session, TAB};
 pub use shapes::{Shape, shapes};
+pub use site::Site;
 pub use surroundings::Surroundings;
 pub use tables::{electrodes_and_maps, understood};
 pub use variant::Variant;

@@ -183,6 +183,11 @@ impl Session {
         self.post("/frame", &json!({ "id": frame })).map(|_| ())
     }
 
+    /// Back from a frame to the page around it.
+    pub fn leave_frames(&self) -> Outcome<()> {
+        self.post("/frame", &json!({ "id": null })).map(|_| ())
+    }
+
     /// Sets the size of the window in CSS pixels.
     pub fn resize(&self, width: u32, height: u32) -> Outcome<()> {
         self.post("/window/rect", &json!({ "width": width, "height": height })).map(|_| ())

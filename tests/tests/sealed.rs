@@ -1,5 +1,5 @@
 //! Nothing leaves the machine: the policy in the file, watched by a server that counts.
-use inward_tests::{Browser, Canary, Folder, Page, Variant, dist_file, example, in_both_browsers};
+use inward_tests::{Browser, Canary, Folder, Page, Site, Variant, dist_file, example, in_both_browsers};
 use serde_json::json;
 use std::time::Duration;
 
@@ -75,6 +75,24 @@ fn nothing_passes_the_policy_and_everything_without_it(browser: Browser) {
     assert_eq!(canary.seen(), Vec::<String>::new());
 }
 
+/// As in a wiki: the frame reaches neither a server nor the page around.
+fn nothing_passes_from_a_sandboxed_frame(browser: Browser) {
+    let canary = Canary::start();
+    let around = "<!doctype html><title>around</title>\
+                  <iframe sandbox='allow-scripts allow-downloads' src='inward.html' width=600 height=600></iframe>";
+    let sealed = Variant::delivered().with_script(&attempts(&canary.host())).text().to_owned();
+    let site = Site::start(&[("/around.html", around.to_owned()), ("/inward.html", sealed)]);
+    let page = Page::at(browser, &site.address("/around.html"));
+    page.session().enter_frame("iframe").unwrap();
+    assert_eq!(tried(&page).len(), 14);
+    let reached = "const ways = [() => parent.document.title, () => parent.localStorage, () => localStorage, () => document.cookie];\
+                   return ways.filter((way) => { try { way(); return true } catch { return false } }).length";
+    assert_eq!(page.value(reached), json!(0));
+    std::thread::sleep(Duration::from_secs(3));
+    assert_eq!(canary.seen(), Vec::<String>::new());
+    assert_eq!(site.seen(), ["/around.html", "/inward.html"]);
+}
+
 /// The whole way through the delivered page, with every way out recorded by the browser itself.
 fn a_whole_visit_asks_for_nothing(browser: Browser) {
     let page = Page::open(browser);
@@ -91,7 +109,11 @@ fn a_whole_visit_asks_for_nothing(browser: Browser) {
     assert_eq!(kept[1], json!(""), "no cookies");
 }
 
-in_both_browsers!(nothing_passes_the_policy_and_everything_without_it, a_whole_visit_asks_for_nothing);
+in_both_browsers!(
+    nothing_passes_the_policy_and_everything_without_it,
+    nothing_passes_from_a_sandboxed_frame,
+    a_whole_visit_asks_for_nothing,
+);
 
 #[test]
 fn the_policy_is_the_strict_one() {

@@ -4,7 +4,7 @@ import { harmless, shortName } from "../text/figures.js";
 
 const SHOW_CHARACTERS = 1 << 18;
 /** The engine reads no more; a larger file need not be loaded to be refused. */
-const MOST_BYTES = 64 << 20;
+export const MOST_BYTES = 64 << 20;
 
 /** Bytes that are looked at to tell text from other content. */
 const SAMPLE_BYTES = 4096;

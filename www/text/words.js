@@ -1,6 +1,8 @@
 /** Every sentence of the page, by code. */
 
 import { enteredText, leftText, NO_BREAK, percentText, shortName, timeText, typeset } from "./figures.js";
+import { HOST_WORDS } from "./host.js";
+import { SEAL_WORDS } from "./sealed.js";
 import { COURSE_WORDS } from "./courses.js";
 import { beginning, TRUST_WORDS } from "./trust.js";
 
@@ -8,6 +10,8 @@ import { beginning, TRUST_WORDS } from "./trust.js";
 const WORDS = {
   ...TRUST_WORDS,
   ...COURSE_WORDS,
+  ...HOST_WORDS,
+  ...SEAL_WORDS,
   title: "Inward",
   tagline: "One equivalent dipole for one EEG scalp map",
   private: "Nothing leaves this machine",

@@ -515,8 +515,8 @@ export function showOverview(session) {
   );
 }
 
-/** Gives an element these children, touching it only where they differ. @param {HTMLElement} parent @param {HTMLElement[]} wanted */
-function keepChildren(parent, wanted) {
-  if (parent.childElementCount === wanted.length && wanted.every((child, at) => parent.children[at] === child)) return;
-  parent.replaceChildren(...wanted);
+/** Gives an element these children, touching it only where they differ. @param {HTMLElement} holder @param {HTMLElement[]} wanted */
+function keepChildren(holder, wanted) {
+  if (holder.childElementCount === wanted.length && wanted.every((child, at) => holder.children[at] === child)) return;
+  holder.replaceChildren(...wanted);
 }

@@ -1,4 +1,4 @@
-//! What is delivered: `inward.html` and `engine/inward.mjs`.
+//! What is delivered: `inward.html` with its digest, `engine/inward.mjs`, and a page that embeds the first.
 
 use crate::bundle::Modules;
 use crate::engine::{loader_script, module, page_script, worker_script};
@@ -11,6 +11,7 @@ use crate::streams::taken_apart;
 use crate::wasm::{Compiled, compile};
 use crate::workspace::{Workspace, files, read};
 use anyhow::{Context, Result, bail};
+use sha2::{Digest, Sha256};
 use std::path::Path;
 
 /// Everything that was made, kept for the scans.
@@ -31,6 +32,8 @@ pub struct Dist {
     pub module: String,
     /// The answer's elements, which the page's script makes.
     pub answer: String,
+    /// A wiki-like page that embeds the page.
+    pub host: String,
 }
 
 /// Builds and writes it all, and tells the sizes.
@@ -61,13 +64,19 @@ pub fn build(workspace: &Workspace) -> Result<Dist> {
     let module = module(&modules.join("engine/module.js")?, &compiled.glue, &carried);
     write(&workspace.dist.join("inward.html"), &page)?;
     write(&workspace.dist.join("engine/inward.mjs"), &module)?;
+    let host = read(&www.join("sample_host.html"))?;
+    write(&workspace.dist.join("sample_host.html"), &host)?;
+    // As `sha256sum --check` takes it.
+    let digest: String = Sha256::digest(&page).iter().map(|byte| format!("{byte:02x}")).collect();
+    write(&workspace.dist.join("inward.html.sha256"), &format!("{digest}  inward.html\n"))?;
     println!("{:>9} bytes  engine, {} packed", compiled.wasm.len(), carried.len());
     println!("{:>9} bytes  target/dist/engine/inward.mjs", module.len());
     println!("{:>9} bytes  target/dist/inward.html", page.len());
+    println!("SHA-256 of inward.html: {digest}");
     if page.len() > LIMIT {
         bail!("inward.html is larger than {LIMIT} bytes");
     }
-    Ok(Dist { compiled, carried, page, loader, script, worker, module, answer })
+    Ok(Dist { compiled, carried, page, loader, script, worker, module, answer, host })
 }
 
 /// Style sheets from this name on are of the answer: they are packed with the script, which is there before it.

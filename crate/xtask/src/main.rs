@@ -30,7 +30,7 @@ use std::process::ExitCode;
 use workspace::Workspace;
 
 const USAGE: &str = "\
-cargo xtask build               write target/dist: inward.html and engine/inward.mjs
+cargo xtask build               write target/dist: inward.html, its SHA-256, engine/inward.mjs, sample_host.html
 cargo xtask serve [--port N]    build, then serve the page on this machine only
 cargo xtask test [--install]    run every check; with --install fetch what they need first
 cargo xtask bench               build, then time the engine natively and in Node

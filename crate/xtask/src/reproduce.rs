@@ -29,7 +29,7 @@ fn compare(workspace: &Workspace, place: &Path) -> Result<()> {
     let mut build = workspace.command(std::env::current_exe()?);
     build.arg("--root").arg(place).arg("build").env("CARGO_TARGET_DIR", place.join("target"));
     run(&mut build)?;
-    for name in ["inward.html", "engine/inward.mjs"] {
+    for name in ["inward.html", "inward.html.sha256", "engine/inward.mjs", "sample_host.html"] {
         let here = std::fs::read(workspace.dist.join(name))?;
         let there = std::fs::read(place.join("target/dist").join(name))?;
         if here != there {

@@ -3,12 +3,15 @@
 
 use crate::dist::Dist;
 use crate::lexer::{Kind, Token, tokens};
-use anyhow::{Result, bail};
+use crate::workspace::{Workspace, files, read, slashed};
+use anyhow::{Context, Result, bail};
 
 /// Names that have no business in the scripts, whatever they are used for.
-const NAMES: [&str; 23] = [
+const NAMES: [&str; 25] = [
+    "BroadcastChannel",
     "RTCPeerConnection",
     "caches",
+    "contentWindow",
     "cookie",
     "cookieStore",
     "createContextualFragment",
@@ -21,7 +24,7 @@ const NAMES: [&str; 23] = [
     "localStorage",
     "location",
     "navigation",
-    "outerHTML",
+    "opener",
     "parseFromString",
     "sendBeacon",
     "serviceWorker",
@@ -35,9 +38,15 @@ const NAMES: [&str; 23] = [
 /// Objects whose `open` opens a window.
 const WINDOWS: [&str; 7] = ["window", "self", "globalThis", "top", "parent", "frames", "document"];
 
-/// Looks through the four scripts, the page's markup and its style.
-pub fn check(dist: &Dist) -> Result<()> {
+/// Looks through the four scripts, the page's markup and its style, and who of the page's modules talks to whom.
+pub fn check(workspace: &Workspace, dist: &Dist) -> Result<()> {
     let mut found = Vec::new();
+    let www = workspace.root.join("www");
+    for path in files(&www)?.iter().filter(|path| path.extension().is_some_and(|extension| extension == "js")) {
+        let name = slashed(path.strip_prefix(&www)?);
+        let talk = talk(&name, &read(path)?).with_context(|| name.clone())?;
+        found.extend(talk.into_iter().map(|what| format!("www/{name}, line {what}")));
+    }
     // The packed engine is no text: any letters may follow each other in it.
     let module = dist.module.replacen(&dist.carried, "", 1);
     for (name, script) in [
@@ -57,6 +66,28 @@ pub fn check(dist: &Dist) -> Result<()> {
     Ok(())
 }
 
+/// Messages to other windows: from `host/` alone, to the window around and never to whoever it is. Workers are the
+/// engine's.
+fn talk(path: &str, script: &str) -> Result<Vec<String>> {
+    let found = tokens(script)?;
+    let (host, engine) = (path.starts_with("host/"), path.starts_with("engine/"));
+    let bad = |at: usize| {
+        let before = |steps: usize| at.checked_sub(steps).map_or("", |at| found[at].text);
+        let text = found[at].text;
+        match found[at].kind {
+            Kind::Word if text == "postMessage" && host => before(1) != "." || before(2) != "parent",
+            Kind::Word if text == "postMessage" => !engine,
+            Kind::Word => matches!(text, "parent" | "frames") && !host,
+            Kind::Quoted | Kind::Template => {
+                let text = text.trim_matches(['"', '\'', '`']);
+                matches!(text, "postMessage" | "parent" | "frames") || (host && text == "*")
+            }
+            Kind::Pattern | Kind::Mark => false,
+        }
+    };
+    Ok((0..found.len()).filter(|at| bad(*at)).map(|at| format!("{}: {}", found[at].line, found[at].text)).collect())
+}
+
 fn in_script(script: &str) -> Result<Vec<String>> {
     let found = tokens(script)?;
     let reached = found
@@ -73,6 +104,8 @@ fn reach(found: &[Token], at: usize) -> Option<String> {
     let bad = match token.kind {
         Kind::Word => match token.text {
             name if NAMES.contains(&name) => true,
+            // Read, it is the document's text; written, or named for `Object.assign`, it is parsed.
+            "outerHTML" => before(1) != "." || after(1) == "=" || after(2) == "=",
             "Function" => before(1) == "new" || after(1) == "(",
             "write" | "writeln" => before(1) == "." && before(2) == "document",
             "setTimeout" | "setInterval" => matches!(after(2).chars().next(), Some('"' | '\'' | '`')),
@@ -83,7 +116,9 @@ fn reach(found: &[Token], at: usize) -> Option<String> {
         Kind::Quoted | Kind::Template => {
             let text = token.text.trim_matches(['"', '\'', '`']);
             let looked_up = before(1) == "[" && after(1) == "]";
-            (looked_up && (NAMES.contains(&text) || text == "open")) || leads_out(text) || text == "_blank"
+            (looked_up && (NAMES.contains(&text) || text == "open" || text == "outerHTML"))
+                || leads_out(text)
+                || text == "_blank"
         }
         Kind::Pattern | Kind::Mark => false,
     };
@@ -171,6 +206,13 @@ mod tests {
             "import(x)",
             "document.write(x)",
             "a.innerHTML = x",
+            "a.outerHTML = x",
+            "a.outerHTML += x",
+            "a['outerHTML'] = x",
+            "Object.assign(a, { outerHTML: x })",
+            "opener.x = 1",
+            "new BroadcastChannel(x)",
+            "a.contentWindow.x()",
             "navigator.sendBeacon(x)",
             "navigator.serviceWorker.register(x)",
             "document.cookie = x",
@@ -190,8 +232,34 @@ mod tests {
         let script = "// eval, location\nimports.open = 1; engine.open(x); async function open(a) {}\n\
             const o = { open(request) { return f(() => request); } }; typeof x === 'function';\n\
             document.createElementNS(\"http://www.w3.org/2000/svg\", \"svg\"); setTimeout(f, 1); f([\"open\", 1]);\n\
-            import0; a.href = URL.createObjectURL(blob);";
+            import0; const text = a.outerHTML; a.href = URL.createObjectURL(blob);";
         assert_eq!(in_script(script).unwrap(), Vec::<String>::new());
+    }
+
+    #[test]
+    fn planted_messages_are_found() {
+        for (path, script) in [
+            ("views/a.js", "parent.postMessage(x, y)"),
+            ("views/a.js", "top.postMessage(x, y)"),
+            ("views/a.js", "event.source.postMessage(x, y)"),
+            ("views/a.js", "a[\"postMessage\"](x, y)"),
+            ("session/a.js", "const { parent } = window"),
+            ("engine/a.js", "parent.postMessage(x, y)"),
+            ("engine/a.js", "frames[0].postMessage(x, y)"),
+            ("host/a.js", "event.source.postMessage(x, y)"),
+            ("host/a.js", "top.postMessage(x, y)"),
+            ("host/a.js", "parent.postMessage(x, \"*\")"),
+            ("host/a.js", "const { postMessage } = parent"),
+        ] {
+            assert!(!talk(path, script).unwrap().is_empty(), "{path}: {script}");
+        }
+        for (path, script) in [
+            ("host/a.js", "parent.postMessage(x, origin)"),
+            ("engine/a.js", "worker.postMessage(x)"),
+            ("views/a.js", "// parent.postMessage\na.parentElement"),
+        ] {
+            assert_eq!(talk(path, script).unwrap(), [""; 0], "{path}: {script}");
+        }
     }
 
     #[test]

@@ -17,6 +17,7 @@ pub fn serve(workspace: &Workspace, dist: Dist, port: u16) -> Result<()> {
     tokio::runtime::Builder::new_current_thread().enable_io().build()?.block_on(async {
         let listener = listen(port).await?;
         println!("\nThe page:  http://{}/", listener.local_addr()?);
+        println!("Embedded:  http://{}/sample_host.html", listener.local_addr()?);
         println!("The file:  {}", workspace.dist.join("inward.html").display());
         println!("Ctrl-C ends this.");
         Ok(axum::serve(listener, router(dist)).await?)
@@ -36,7 +37,9 @@ async fn listen(port: u16) -> Result<TcpListener> {
 
 fn router(dist: Dist) -> Router {
     Router::new()
-        .route("/", file("text/html; charset=utf-8", dist.page))
+        .route("/", file("text/html; charset=utf-8", dist.page.clone()))
+        .route("/inward.html", file("text/html; charset=utf-8", dist.page))
+        .route("/sample_host.html", file("text/html; charset=utf-8", dist.host))
         .route("/engine/inward.mjs", file("text/javascript; charset=utf-8", dist.module))
 }
 

@@ -34,7 +34,7 @@ fn run_all<'scope>(workspace: &'scope Workspace, install: bool, scope: &'scope S
     let dist = steps.step("build", || dist::build(workspace));
     if let Some(dist) = &dist {
         steps.step("no machine path", || paths::check(workspace, dist));
-        steps.step("sealed", || sealed::check(dist));
+        steps.step("sealed", || sealed::check(workspace, dist));
     }
     // Its compiler works on one core for most of the time: the tests are compiled meanwhile.
     let twin = dist.is_some().then(|| scope.spawn(|| reproduce::check(workspace)));
