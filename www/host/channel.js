@@ -3,7 +3,7 @@
  * window at the given origin alone and are addressed to that origin. A scan of the build refuses it elsewhere.
  */
 
-import { VERSION } from "./protocol.js";
+import { PROTOCOL } from "./protocol.js";
 
 /** The origin that a text names, such as `https://wiki.example.org:8443`; null for anything else. @param {string} text */
 export function originNamed(text) {
@@ -28,7 +28,7 @@ export function openChannel(origin, hear) {
   addEventListener("message", listen);
   return {
     /** @param {{ kind: string, [key: string]: unknown }} message */
-    send: (message) => parent.postMessage({ inward: VERSION, ...message }, origin),
+    send: (message) => parent.postMessage({ inward: PROTOCOL, ...message }, origin),
     close: () => removeEventListener("message", listen),
   };
 }

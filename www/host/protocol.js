@@ -2,7 +2,7 @@
 
 import { MOST_BYTES } from "../intake/files.js";
 
-export const VERSION = 1;
+export const PROTOCOL = 1;
 export const MOST_FILES = 200;
 const MOST_OF_A_NAME = 255;
 const MOST_LABELS = 1000;
@@ -43,7 +43,7 @@ export function readMessage(message) {
   const given = message.id ?? null;
   if (given !== null && !isShort(given) && !Number.isSafeInteger(given)) return refused("message-malformed", "id");
   id = given;
-  if (message.inward !== VERSION) return refused("version-unknown", "inward");
+  if (message.inward !== PROTOCOL) return refused("version-unknown", "inward");
   const { kind, files, settings = {} } = message;
   if (kind === "report-wanted") return { kind, id };
   if (kind !== "data") return refused("kind-unknown", "kind");
