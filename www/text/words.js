@@ -19,7 +19,7 @@ const WORDS = {
 
   "empty.what": "Does one equivalent dipole explain a scalp map, where would it lie, and what is left over?",
   "empty.how":
-    "Give a map as a table: paste it, drop it anywhere on this page, or pick a file. The answer comes by itself.",
+    "Give a map as a table, or work that you saved: paste it, drop it anywhere on this page, or pick a file. The answer comes by itself.",
   "empty.private": "Everything is computed in this tab. Nothing is sent, stored or looked up.",
   "empty.examples": "Begin with an invented map",
   "empty.tables": "Or with tables like these",
