@@ -9,7 +9,7 @@ import { make, need, speak } from "./element.js";
 
 const NOTE_ID = "term-note";
 /** Where a note may be appended inside; it is put after any other block. */
-const WITHIN = "li, td, th, dd, fieldset, figure, summary";
+const WITHIN = "li,td,th,dd,fieldset,figure,summary";
 
 /**
  * Text with its terms as buttons. A button of the browser's own does not break over lines as words do.
@@ -56,7 +56,7 @@ function openNote(button) {
   const term = termOf(button.getAttribute("data-term") ?? "");
   const note = make("p", "", { id: NOTE_ID, class: "term-note" });
   note.append(make("strong", term.words[0]), ` ${term.line}`);
-  const block = button.closest(`${WITHIN}, p, h2, h3, div`);
+  const block = button.closest(`${WITHIN},p,h2,h3,div`);
   if (block === null) return;
   if (block.matches(WITHIN)) block.append(note);
   else block.after(note);
