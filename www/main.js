@@ -23,6 +23,7 @@ import { showHost } from "./views/host.js";
 import { showInfluence } from "./views/influence.js";
 import { showIntake } from "./views/intake.js";
 import { showLandscape } from "./views/landscape.js";
+import { showLeaving } from "./views/leaving.js";
 import { showMatching } from "./views/matching.js";
 import { showMaps } from "./views/maps.js";
 import { showNotes } from "./views/notes.js";
@@ -91,6 +92,7 @@ for (const show of [
   showMatching,
   showUnderstood,
   showNotes,
+  showLeaving,
   showUndo,
   showColophon,
   showSealed,

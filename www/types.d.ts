@@ -754,6 +754,10 @@ type Markup = string | [string, Record<string, string>, ...Markup[]];
 /** What is in the answer, from answer.html; put before the page's script by the build. */
 declare const ANSWER_MARKUP: Markup[];
 
+/** The style sheet of a report, and what a browser may do with one that was saved; put before the page's script by the build. */
+declare const REPORT_STYLE: string;
+declare const REPORT_POLICY: string;
+
 /** A study as scripts see it; what stands after `close` is for the page's worker. */
 interface Study {
   readonly head: ReportHead;
@@ -1178,4 +1182,6 @@ interface SessionState {
   explained: Explained;
   /** With the key of the answer whose they are. */
   suspects: (Suspects & { key: number }) | null;
+  /** Indexes of the maps in the order of the list, which may be filtered. */
+  listed: number[];
 }

@@ -7,6 +7,7 @@ import { makeExplanations, UNEXPLAINED } from "./explanations.js";
 import { makeCourses } from "./courses.js";
 import { makeFitting } from "./fitting.js";
 import { makeInquiries } from "./inquiries.js";
+import { makePaper } from "./paper.js";
 import { makePopulations } from "./populations.js";
 import { makeSaving } from "./saving.js";
 import { makeSideBySide } from "./side_by_side.js";
@@ -66,6 +67,7 @@ export function makeSession() {
       populations: null,
       explained: UNEXPLAINED,
       suspects: null,
+      listed: [],
     }),
   );
 
@@ -392,6 +394,7 @@ export function makeSession() {
     ...populations,
     ...explanations,
     ...makeCourses(store, () => client),
+    ...makePaper(store, () => client, { given: givenPopulations, known: explanations.explainedMaps, summary: inquiries.summary }),
     read: store.read,
     watch: store.watch,
     fail,
@@ -641,6 +644,11 @@ export function makeSession() {
     /** Marks an electrode everywhere. @param {string | null} label */
     point(label) {
       if (store.read().pointed !== label) store.write({ pointed: label });
+    },
+
+    /** Indexes of the maps in the order of the list. @param {number[]} listed */
+    setListed(listed) {
+      store.write({ listed });
     },
 
     /** The residual variance up to which maps count as near-dipolar. @param {number} threshold */

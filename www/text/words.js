@@ -4,6 +4,7 @@ import { enteredText, leftText, NO_BREAK, percentText, shortName, timeText, type
 import { HOST_WORDS } from "./host.js";
 import { SEAL_WORDS } from "./sealed.js";
 import { COURSE_WORDS } from "./courses.js";
+import { REPORT_WORDS } from "./report.js";
 import { beginning, TRUST_WORDS } from "./trust.js";
 
 /** @type {Record<string, string>} */
@@ -12,6 +13,7 @@ const WORDS = {
   ...COURSE_WORDS,
   ...HOST_WORDS,
   ...SEAL_WORDS,
+  ...REPORT_WORDS,
   title: "Inward",
   tagline: "One equivalent dipole for one EEG scalp map",
   private: "Nothing leaves this machine",

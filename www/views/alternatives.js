@@ -13,10 +13,10 @@ import { writeLines } from "./trust.js";
 
 /** @import { Session } from "../session/session.js" */
 
-const ALTERNATIVE_COLUMNS = ["kind", "rv", "adjusted", "parameters", "distance", "f", "bic", "share", "decision"];
+export const ALTERNATIVE_COLUMNS = ["kind", "rv", "adjusted", "parameters", "distance", "f", "bic", "share", "decision"];
 
 /** @param {Alternatives} alternatives */
-const rowsOf = ({ kinds }) => kinds.map(({ label, cells, decision }) => [label, ...cells, word(`alternatives.${cells[0] === "" ? "none" : decision}`)]);
+export const alternativeRows = ({ kinds }) => kinds.map(({ label, cells, decision }) => [label, ...cells, word(`alternatives.${cells[0] === "" ? "none" : decision}`)]);
 
 /** @param {HTMLTableElement} table @param {string[][]} rows the first has their heads */
 export function writeTable(table, [heads, ...rows]) {
@@ -43,7 +43,7 @@ export function showAlternatives(session) {
   });
   copy.addEventListener("click", async () => {
     const { alternatives } = explainedOf(session.read());
-    if (alternatives !== null) confirmOn(copy, await copyText(cellsText([heads, ...rowsOf(alternatives)])));
+    if (alternatives !== null) confirmOn(copy, await copyText(cellsText([heads, ...alternativeRows(alternatives)])));
   });
 
   session.watch(
@@ -64,7 +64,7 @@ export function showAlternatives(session) {
       need("alternatives-sentence", HTMLElement).replaceChildren(...withTerms(typeset(alternatives?.sentence ?? word("alternatives.hint"))));
       if (alternatives === null) return;
       const table = need("alternatives-table", HTMLTableElement);
-      writeTable(table, [heads, ...rowsOf(alternatives)]);
+      writeTable(table, [heads, ...alternativeRows(alternatives)]);
       alternatives.kinds.forEach(({ kind, decision }, at) => Object.assign(table.tBodies[0].rows[at].dataset, { kind, decision }));
       writeLines("alternatives-lines", [...alternatives.kinds.slice(1).map(({ label, sentence }) => `${beginning(label)}: ${sentence}`), ...alternatives.notes].map((text) => ({ text })));
     },

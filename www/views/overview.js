@@ -311,6 +311,7 @@ export function showOverview(session) {
       list.scrollTop = line * /** @type {number} */ (lineOf.get(anchor)) + offset;
     }
     render();
+    session.setListed(sequence);
     took = performance.now() - start;
   }
 

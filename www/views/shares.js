@@ -3,7 +3,6 @@
  * threshold to move and a table; and mutual-information reductions, where they are given, against it.
  */
 
-import { freshMaps } from "../session/decompositions.js";
 import { outwardNames } from "../session/outward.js";
 import { layOutShares, paintInformation, paintShares, shareAt, sharesHeight } from "../draw/curves.js";
 import { surroundingsOf } from "../draw/canvas.js";
@@ -11,14 +10,15 @@ import { SvgPen, svgElement } from "../draw/pen.js";
 import { seriesColour, seriesDash } from "../draw/series.js";
 import { copyText, saveBlob } from "../export/out.js";
 import { cellsText } from "../export/table.js";
-import { enteredNumber, enteredText, percentText, shortName, typeset } from "../text/figures.js";
+import { enteredNumber, enteredText, percentText, typeset } from "../text/figures.js";
 import { shareAtText, shareBelowText, shareTitle, word } from "../text/words.js";
 import { confirmOn } from "./confirm.js";
 import { make, need } from "./element.js";
 import { figureTools, showFigure } from "./figure.js";
 import { noteElement } from "./notes.js";
 import { populationLines, withRule } from "./populations.js";
-import { fittedDecompositions, nounOf, seriesOf } from "./several.js";
+import { shareLines, shareTables } from "./share_tables.js";
+import { fittedDecompositions, nounOf } from "./several.js";
 import { keepPainted } from "./surface.js";
 
 /** @import { Session } from "../session/session.js" */
@@ -79,7 +79,7 @@ export function showShares(session) {
   });
 
   /** Lines under the names that leave the page. */
-  const outwardLines = () => (summary === null ? [] : linesOf(summary, outwardNames(session.read()).decompositions));
+  const outwardLines = () => (summary === null ? [] : shareLines(summary, session.read(), outwardNames(session.read()).decompositions));
 
   /** Each line at a residual variance, in words. @param {number} rv */
   const valuesAt = (rv, which = lines) => which.map((line) => `${line.name} ${percentText(shareAt(line, rv))}`).join(", ");
@@ -147,77 +147,10 @@ export function showShares(session) {
     return picture;
   }
 
-  /** @param {Summary["members"][number]} member */
-  const decompositionOf = (member) =>
-    session.read().decompositions.find(({ name, subject }) => name === member.name && subject === (member.subject ?? ""));
-
-  /** A line for each group of one name and several subjects, and for each decomposition that is in none. @param {Summary} held @param {Map<number, { name: string, subject: string }>} [labels] in place of their names */
-  function linesOf({ members, groups }, labels) {
-    const series = seriesOf(session.read());
-    return members.flatMap((member, index) => {
-      const decomposition = decompositionOf(member);
-      if (decomposition === undefined || member.fitted === 0) return [];
-      const at = series.get(decomposition.id) ?? 0;
-      const label = labels?.get(decomposition.id) ?? decomposition;
-      const group = groups.find((one) => one.members.includes(index));
-      if (group !== undefined) {
-        const first = group.members.find((one) => members[one].fitted > 0) === index;
-        return first ? [{ name: shortName(label.name), at, ...group.curve, steps: false, information: group.information }] : [];
-      }
-      const rv = freshMaps(decomposition.answer).flatMap((map) => ("rv" in map ? [map.rv] : [])).sort((a, b) => a - b);
-      const share = rv.map((_, k) => (k + 1) / rv.length);
-      const { information } = decomposition;
-      const name = [label.name, label.subject].filter((part) => part).map(shortName).join(", ");
-      return [{ name, at, rv, share, low: null, high: null, steps: true, information }];
-    });
-  }
-
-  /** @typedef {{ id: string, heading: string[], rows: string[][], at: (number | undefined)[] }} ShareTable */
-
-  /**
-   * The tables as text, the first cell of a row naming it; `at` gives each row's line. A column without anything in it
-   * is left out.
-   * @param {Summary} held
-   * @returns {ShareTable[]}
-   */
-  function tables({ labels, members, groups, differences }) {
-    const limit = shareAtText(Number(labels[0]) / 100);
-    const series = seriesOf(session.read());
-    const at = members.map((member) => series.get(decompositionOf(member)?.id ?? 0));
-    /** @type {ShareTable[]} */
-    const all = [
-      {
-        id: "group-table",
-        heading: ["decomposition", "shares.subjects", limit, "shares.interval", "shares.median"],
-        rows: groups.map(({ name, cells }) => [shortName(name), ...cells]),
-        at: groups.map((group) => at[group.members[0]]),
-      },
-      {
-        id: "share-table",
-        heading: ["decomposition", "subject", "shares.fitted", limit, "shares.share", "shares.weighted", "shares.median"],
-        rows: members.map(({ name, subject, cells }) => [shortName(name), shortName(subject ?? ""), ...cells]),
-        at,
-      },
-      {
-        id: "difference-table",
-        heading: ["shares.pair", "shares.subjects", "shares.difference", "shares.interval"],
-        rows: differences.map(({ a, b, cells }) => [`${shortName(groups[a].name)} \u2212 ${shortName(groups[b].name)}`, ...cells]),
-        at: [],
-      },
-    ];
-    return all.map((table) => {
-      const kept = table.heading.map((_, k) => k === 0 || table.rows.some((row) => row[k] !== ""));
-      /** @param {string[]} cells */
-      const keep = (cells) => cells.filter((_, k) => kept[k]);
-      const heading = table.heading.map((text) => (text === limit ? text : word(text)));
-      return { ...table, heading: keep(heading), rows: table.rows.map(keep) };
-    });
-  }
-
   function writeTables() {
     if (summary === null) return;
     const several = summary.groups.length > 0;
-    for (const { id, heading, rows, at } of tables(summary)) {
+    for (const { id, heading, rows, at } of shareTables(summary, session.read())) {
       const table = need(id, HTMLTableElement);
       table.tHead?.rows[0].replaceChildren(...heading.map((text) => make("th", typeset(text), { scope: "col" })));
       table.tBodies[0].replaceChildren(
@@ -263,7 +196,7 @@ export function showShares(session) {
       if (stale && session.read().progress !== null) await new Promise((wake) => setTimeout(wake, 10 * took));
     } while (stale);
     asking = false;
-    lines = summary === null ? [] : linesOf(summary);
+    lines = summary === null ? [] : shareLines(summary, session.read());
     writeTables();
     paint();
   }
@@ -367,7 +300,7 @@ export function showShares(session) {
   });
   copy.addEventListener("click", async () => {
     if (summary === null) return;
-    const shown = tables(summary).filter(({ rows }) => rows.length > 0);
+    const shown = shareTables(summary, session.read()).filter(({ rows }) => rows.length > 0);
     const texts = shown.map(({ heading, rows }) => cellsText([heading, ...rows]));
     confirmOn(copy, await copyText(texts.join("\n\n")));
   });

@@ -45,14 +45,14 @@ pub fn build(workspace: &Workspace) -> Result<Dist> {
     let modules = Modules::read(&www).context("in www")?;
     let carried = packed(&streams)?;
     let loader = loader_script(&modules.join("load.js")?)?;
-    let (style, answer_style) = styles(&www.join("style"))?;
+    let styles = styles(&www.join("style"))?;
     let answer = read(&www.join("answer.html"))?;
     let elements = markup(&answer)?;
     let examples = examples(&workspace.root.join("example_maps"))?;
-    let script = page_script(&modules.join("main.js")?, &examples, &answer_style, &elements)?;
+    let script = page_script(&modules.join("main.js")?, &examples, &styles, &elements)?;
     let worker = worker_script(&modules.join("engine/worker.js")?, &compiled.glue)?;
     let parts = Parts {
-        style: &style,
+        style: &styles.first,
         loader: &loader,
         script: &script,
         packed: &packed(script.as_bytes())?,
@@ -82,20 +82,38 @@ pub fn build(workspace: &Workspace) -> Result<Dist> {
 /// Style sheets from this name on are of the answer: they are packed with the script, which is there before it.
 const ANSWER_STYLE: &str = "6";
 
-/// All style sheets in the order of their names: those that the page begins with, and those of the answer.
-fn styles(folder: &Path) -> Result<(String, String)> {
-    let (mut first, mut later) = (String::new(), String::new());
+/// Style sheets by where they go.
+pub struct Styles {
+    /// What the page begins with.
+    pub first: String,
+    /// Of the answer.
+    pub answer: String,
+    /// Of a report on paper and as a page of its own.
+    pub report: String,
+}
+
+/// All style sheets in the order of their names.
+fn styles(folder: &Path) -> Result<Styles> {
+    let mut styles = Styles { first: String::new(), answer: String::new(), report: String::new() };
     for path in files(folder)? {
         let name = path.file_name().unwrap_or_default().to_string_lossy();
         if path.extension().is_some_and(|extension| extension == "css") {
-            let joined = if *name < *ANSWER_STYLE { &mut first } else { &mut later };
+            let joined = match &*name {
+                "report.css" => &mut styles.report,
+                name if name < ANSWER_STYLE => &mut styles.first,
+                _ => &mut styles.answer,
+            };
             *joined += &tightened(&read(&path)?);
         }
     }
-    if later.contains("@import") || later.contains("url(") {
+    if [&styles.answer, &styles.report].iter().any(|style| style.contains("@import") || style.contains("url(")) {
         bail!("a style sheet loads a resource");
     }
-    Ok((first, later))
+    // A report is written as XML writes text, and its digest is that of the text as it is here.
+    if styles.report.contains(['<', '>', '&']) {
+        bail!("the style sheet of a report has a letter that does not stand for itself in every markup");
+    }
+    Ok(styles)
 }
 
 /// A style sheet without comments and without blanks at the ends of lines and after a property; no string in it holds any.

@@ -1,7 +1,9 @@
 //! The engine as a module for scripts and other pages, and the glue both it and the worker carry.
 
 use crate::bundle::Joined;
+use crate::dist::Styles;
 use crate::lexer::terse;
+use crate::page::digest;
 use anyhow::Context;
 
 /// The glue as a function: each call gives a fresh instance, which is how a trap is recovered from.
@@ -14,11 +16,16 @@ pub fn loader_script(joined: &Joined) -> anyhow::Result<String> {
     classic("", joined).context("the script that loads the page's")
 }
 
-/// The page's script, with the invented maps and the answer's style and elements inside.
-pub fn page_script(joined: &Joined, examples: &str, style: &str, answer: &str) -> anyhow::Result<String> {
-    let style = serde_json::to_string(style)?;
-    let data =
-        format!("const EXAMPLES = {examples};\nconst ANSWER_STYLE = {style};\nconst ANSWER_MARKUP = {answer};\n");
+/// The page's script, with the invented maps, the answer's style and elements and the style of reports inside.
+pub fn page_script(joined: &Joined, examples: &str, styles: &Styles, answer: &str) -> anyhow::Result<String> {
+    let [style, report] = [&styles.answer, &styles.report].map(serde_json::to_string);
+    // A report that is saved as a page runs nothing, loads nothing and has this very style.
+    let policy = format!("default-src 'none'; style-src {}; img-src data:", digest(&styles.report));
+    let data = format!(
+        "const EXAMPLES = {examples};\nconst ANSWER_STYLE = {};\nconst ANSWER_MARKUP = {answer};\n\
+         const REPORT_STYLE = {};\nconst REPORT_POLICY = \"{policy}\";\n",
+        style?, report?
+    );
     classic(&data, joined).context("page script")
 }
 

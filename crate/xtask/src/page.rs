@@ -131,15 +131,19 @@ fn tag_settled(tag: &str) -> Result<String> {
 /// What the browser may do with the file: run these very scripts and this very style, compile the module,
 /// start the worker from a blob, show and save pictures. No request leaves it.
 fn policy(scripts: &[&str], style: &str) -> String {
-    let hash = |text: &str| format!("'sha256-{}'", BASE64_STANDARD.encode(Sha256::digest(text)));
-    let scripts: Vec<String> = scripts.iter().map(|script| hash(script)).collect();
+    let scripts: Vec<String> = scripts.iter().map(|script| digest(script)).collect();
     format!(
         "default-src 'none'; script-src {} 'wasm-unsafe-eval'; style-src {}; worker-src blob:; \
          img-src data: blob:; base-uri 'none'; form-action 'none'; \
          require-trusted-types-for 'script'; trusted-types page pool",
         scripts.join(" "),
-        hash(style)
+        digest(style)
     )
+}
+
+/// A text as a policy names it.
+pub fn digest(text: &str) -> String {
+    format!("'sha256-{}'", BASE64_STANDARD.encode(Sha256::digest(text)))
 }
 
 fn content(text: &str) -> String {
