@@ -7,13 +7,15 @@ import { percentText } from "../text/figures.js";
 import { dipoleCountText, noun, shareAtText, shareTitle, word } from "../text/words.js";
 import { shareAt } from "../draw/curves.js";
 import { HEAD_VIEWS } from "../views/plates.js";
-import { SAVED_VIEW, shellsOf } from "../views/three_views.js";
+import { shellsOf } from "../views/three_views.js";
 
 /** @import { ShareLine } from "../draw/curves.js" */
 /** @import { FigureParts } from "../views/figure.js" */
 
 /** Points of a curve of very many maps: more than a reader or a printer can tell apart. */
 const MOST_POINTS = 400;
+/** CSS pixels of a view of the head. */
+const REPORTED_VIEW = 250;
 
 /** @param {ShareLine} line */
 function thinned(line) {
@@ -56,15 +58,15 @@ export function dipolesFigure(answer, threshold) {
     name: "dipoles",
     title: word("dipoles"),
     description: dipoleCountText(dipoles.length, dipoles.length, shareAtText(threshold), "faint"),
-    width: 3 * SAVED_VIEW,
+    width: 3 * REPORTED_VIEW,
     paint: (width, around, penAt) => {
       HEAD_VIEWS.forEach(({ view, from, sides }, k) => {
         const letters = sides.map((side) => ({ side, text: word(`map.${side}`) }));
-        const surface = { pen: penAt(k * SAVED_VIEW, 0), width: SAVED_VIEW, height: SAVED_VIEW };
+        const surface = { pen: penAt(k * REPORTED_VIEW, 0), width: REPORTED_VIEW, height: REPORTED_VIEW };
         paintDipoles(surface, { dipoles, chosen: -1, byRv: true, shells, from, letters, seen: word(`view.${view}`) }, around);
       });
       const legend = { byRv: true, threshold, names: [], words: word("dipoles.rv") };
-      return SAVED_VIEW + 8 + paintDipoleLegend(penAt(0, SAVED_VIEW + 8), width, legend, around);
+      return REPORTED_VIEW + 8 + paintDipoleLegend(penAt(0, REPORTED_VIEW + 8), width, legend, around);
     },
   };
 }

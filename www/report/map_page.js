@@ -5,7 +5,7 @@ import { beginning, verdictParts } from "../text/trust.js";
 import { mapText, word } from "../text/words.js";
 import { ALTERNATIVE_COLUMNS, alternativeRows } from "../views/alternatives.js";
 import { headFigure, mapsFigure } from "../views/plates.js";
-import { figureOf, listed, numbersOf, paragraph, put, tableOf } from "./pieces.js";
+import { figureOf, bulletsOf, numbersOf, paragraph, put, tableOf } from "./pieces.js";
 
 /** @import { ReportedMap, ReportedTable } from "../session/paper.js" */
 
@@ -25,7 +25,7 @@ function othersOf(alternatives) {
     put("h3", {}, word("alternatives")),
     paragraph(alternatives.sentence),
     tableOf(word("alternatives"), heads, alternativeRows(alternatives), "plain"),
-    listed("", lines, "small"),
+    bulletsOf("", lines, "small"),
   ];
 }
 
@@ -39,10 +39,10 @@ function trustOf({ region, cautions }, verdict) {
       put(
         "div",
         {},
-        listed(word("verdict.reasons"), (verdict?.reasons ?? []).map(({ text }) => text), "small"),
-        listed(word("verdict.hints"), (verdict?.hints ?? []).map(({ text }) => text), "small"),
+        bulletsOf(word("verdict.reasons"), (verdict?.reasons ?? []).map(({ text }) => text), "small"),
+        bulletsOf(word("verdict.hints"), (verdict?.hints ?? []).map(({ text }) => text), "small"),
       ),
-      put("div", {}, listed(word("report.cautions"), cautions, "small")),
+      put("div", {}, bulletsOf(word("report.cautions"), cautions, "small")),
     ),
     put("h3", {}, word("region")),
     paragraph(region.sentence),
@@ -52,7 +52,7 @@ function trustOf({ region, cautions }, verdict) {
       numbersOf(word("region.numbers"), [...region.rows, ...(region.repeats?.rows ?? [])]),
       put("div", {}, tableOf(word("region.causes"), ["region.cause", "region.size", "region.sd"].map(word), causes, "plain"), paragraph(region.structure, "small")),
     ),
-    listed("", region.notes, "small"),
+    bulletsOf("", region.notes, "small"),
   ];
 }
 
@@ -67,7 +67,7 @@ export function mapPage({ index, sheet, trust, alternatives }, { answer, preambl
   const title = put("h2", {}, mapText(answer, index));
   if (sheet === null || trust === null) {
     const text = "error" in map ? [`${map.name}: ${map.error.message}`, map.error.hint] : [word("report.not-fitted")];
-    return [title, ...text.map((line) => paragraph(line)), listed("", warnings, "warned")];
+    return [title, ...text.map((line) => paragraph(line)), bulletsOf("", warnings, "warned")];
   }
   const verdict = alternatives?.verdict ?? trust.verdict;
   const prefix = `map-${index + 1}-`;
@@ -76,7 +76,7 @@ export function mapPage({ index, sheet, trust, alternatives }, { answer, preambl
     title,
     verdictLine(verdict),
     paragraph(sheet.sentence, "sentence"),
-    listed("", warnings, "warned"),
+    bulletsOf("", warnings, "warned"),
     figureOf(mapsFigure(sheet), prefix, ""),
     figureOf(headFigure(sheet, { region: trust.region, alternatives }), `${prefix}head-`, `${turned} ${word("where.lines")}`),
     put("div", { class: "columns" }, numbersOf(word("report.numbers"), sheet.rows)),

@@ -23,7 +23,7 @@ export function paragraph(text, kind = "") {
 }
 
 /** A list under a heading; nothing where it is empty. @param {string} heading @param {(Node | string)[]} lines @param {string} [kind] */
-export function listed(heading, lines, kind = "") {
+export function bulletsOf(heading, lines, kind = "") {
   if (lines.length === 0) return null;
   const list = put("ul", {}, ...lines.map((line) => put("li", {}, line)));
   return put("div", kind === "" ? {} : { class: kind }, heading === "" ? null : put("h3", {}, heading), list);

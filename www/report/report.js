@@ -7,8 +7,8 @@ import { mapText, word } from "../text/words.js";
 import { shareLines, shareTables } from "../views/share_tables.js";
 import { sharesFigure } from "./figures.js";
 import { mapPage, notePage } from "./map_page.js";
-import { listed, paragraph, put, figureOf, tableOf } from "./pieces.js";
-import { filesTable, leftOutText, tablePage } from "./table_page.js";
+import { bulletsOf, paragraph, put, figureOf, tableOf } from "./pieces.js";
+import { filesTable, outText, tablePage } from "./table_page.js";
 
 /** @import { ReportedTable, ReportedWork } from "../session/paper.js" */
 
@@ -27,14 +27,14 @@ const tableName = ({ name, subject }) => [name, subject].filter((part) => part !
 /** @param {ReportedWork} work @param {SessionState} state */
 function comparisonPage({ summary, threshold, tables }, state) {
   if (summary === null) return [];
-  const called = (/** @type {{ id: number }} */ { id }) => tables.find(({ series }) => series === id) ?? tables[0];
+  const labels = new Map(tables.map((table) => [table.id, table]));
   const codes = /** @type {Record<string, string>} */ ({ "group-table": "shares.groups", "share-table": "shares.table", "difference-table": "shares.differences" });
   const components = tables.every(({ preamble }) => preamble.understood.columns_are === "components");
   return [
     put("h2", {}, word("report.comparison")),
-    figureOf(sharesFigure(shareLines(summary, state, called), threshold, components), "compared-", ""),
-    ...shareTables(summary, state, called).map(({ id, heading, rows }) => tableOf(word(codes[id]), heading, rows)),
-    listed("", summary.notes.map(({ message }) => message), "small"),
+    figureOf(sharesFigure(shareLines(summary, state, labels), threshold, components), "compared-", ""),
+    ...shareTables(summary, state, labels).map(({ id, heading, rows }) => tableOf(word(codes[id]), heading, rows)),
+    bulletsOf("", summary.notes.map(({ message }) => message), "small"),
   ];
 }
 
@@ -44,7 +44,7 @@ function comparisonPage({ summary, threshold, tables }, state) {
  * @param {Added} added
  * @returns {{ title: string, sections: HTMLElement[] }}
  */
-export function reportOf(work, state, added) {
+export function writtenReport(work, state, added) {
   const { program, date, tables, own, maps, summary, methods, parts, alone, threshold, columns } = work;
   const made = program === null ? "" : programText(program);
   /** @type {HTMLElement[]} */
@@ -58,9 +58,8 @@ export function reportOf(work, state, added) {
   if (parts.includes("summary")) {
     for (const [at, table] of tables.entries()) {
       const name = alone ? "" : tableName(table);
-      const called = (/** @type {{ id: number }} */ { id }) => tables.find(({ series }) => series === id) ?? table;
       const single = summary === null ? null : { ...summary, groups: [] };
-      const line = single === null ? undefined : shareLines(single, state, called).find(({ id }) => id === table.series);
+      const line = single === null ? undefined : shareLines(single, state, new Map([[table.id, table]])).find(({ id }) => id === table.id);
       section("summary", [word("report.summary"), name].filter((part) => part !== "").join(" · "), [
         ...tablePage(table, { line, threshold, columns, prefix: `table-${at + 1}-` }),
         room(added),
@@ -74,7 +73,7 @@ export function reportOf(work, state, added) {
       section("map", what, [
         ...mapPage(one, own),
         filesTable(own.preamble),
-        paragraph(`${own.head === null ? "" : `${word("head")} ${own.head.title}. `}${leftOutText(own.preamble)}`, "small"),
+        paragraph(`${own.head === null ? "" : `${word("head")} ${own.head.title}. `}${outText(own.preamble)}`, "small"),
         room(added),
         paragraph(word("caution"), "small"),
       ]);

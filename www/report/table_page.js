@@ -6,7 +6,7 @@ import { shortName, typeset } from "../text/figures.js";
 import { factsOfTable, notListedText } from "../text/report.js";
 import { cellText, columnHead, columnText, factsText, labelLines, mapText, roleText, symbolOf, word } from "../text/words.js";
 import { dipolesFigure, sharesFigure } from "./figures.js";
-import { figureOf, listed, paragraph, put, tableOf } from "./pieces.js";
+import { figureOf, bulletsOf, paragraph, put, tableOf } from "./pieces.js";
 
 /** @import { ShareLine } from "../draw/curves.js" */
 /** @import { ReportedTable } from "../session/paper.js" */
@@ -26,7 +26,7 @@ export function filesTable({ inputs, understood }) {
 }
 
 /** @param {InwardReport} preamble */
-export function leftOutText({ electrodes }) {
+export function outText({ electrodes }) {
   const out = electrodes.filter(({ used }) => !used).map(({ label }) => shortName(label));
   return `${word("report.out")}: ${out.length === 0 ? word("report.out-none") : out.join(", ")}.`;
 }
@@ -74,14 +74,14 @@ export function tablePage(table, { line, threshold, columns, prefix }) {
   const several = fitted > 1;
   return [
     put("h2", {}, [word("report.summary"), name, subject].filter((part) => part !== "").map(shortName).join(" · ")),
-    paragraph(`${factsOfTable(answer.count, fitted, used)} ${leftOutText(preamble)} ${word("report.unit")}: ${word(`unit.${answer.settings.mapUnit}`)}.`),
+    paragraph(`${factsOfTable(answer.count, fitted, used)} ${outText(preamble)} ${word("report.unit")}: ${word(`unit.${answer.settings.mapUnit}`)}.`),
     filesTable(preamble),
     several && line !== undefined ? figureOf(sharesFigure([line], threshold, components), `${prefix}shares-`, "", 620) : null,
     several ? figureOf(dipolesFigure(answer, threshold), `${prefix}dipoles-`, dipolesFigure(answer, threshold).description) : null,
     ...(several ? mapsTable(table, columns) : []),
     head === null ? null : put("h3", {}, `${word("head")} ${head.title}`),
     head === null ? null : paragraph(`${head.source} ${head.rows.map(({ label, value, unit }) => `${label}: ${value} ${unit}`.trim()).join("; ")}.`, "small"),
-    listed(word("report.understood"), understoodLines(preamble), "small"),
-    listed(word("report.noticed"), preamble.notes.map(({ severity, message }) => (severity === "warning" ? `${word("note.warning")}: ${message}` : message)), "small"),
+    bulletsOf(word("report.understood"), understoodLines(preamble), "small"),
+    bulletsOf(word("report.noticed"), preamble.notes.map(({ severity, message }) => (severity === "warning" ? `${word("note.warning")}: ${message}` : message)), "small"),
   ];
 }

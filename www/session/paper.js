@@ -5,13 +5,14 @@
  * @typedef {"summary" | "maps" | "methods" | "notes"} ReportPart
  * @typedef {{ maps: number[], parts: ReportPart[], explained: boolean }} ReportWish `explained`: other explanations are looked for
  * @typedef {{ index: number, sheet: Sheet | null, trust: Trust | null, alternatives: Alternatives | null, note: TechnicalRecord | null }} ReportedMap
- * @typedef {{ name: string, subject: string, answer: Answer, preamble: InwardReport, head: Sheet["head"] | null, series: number }} ReportedTable
+ * @typedef {{ id: number, name: string, subject: string, answer: Answer, preamble: InwardReport, head: Sheet["head"] | null }} ReportedTable under its outward name
  * @typedef {{ program: Program | null, date: Date, threshold: number, columns: TableColumn[], tables: ReportedTable[], own: ReportedTable,
  *             maps: ReportedMap[], summary: Summary | null, methods: Methods | null, parts: ReportPart[], alone: boolean }} ReportedWork
  */
 
 import { freshMaps } from "./decompositions.js";
 import { askHelper, explainedOf } from "./explanations.js";
+import { outwardNames } from "./outward.js";
 
 /** @import { Pool } from "../engine/pool/pool.js" */
 
@@ -30,6 +31,9 @@ const LOOK_MS = 100;
 export function makePaper(store, pool, { given, known, summary }) {
   /** The last report that was asked for. */
   let run = 0;
+
+  /** Files of the current decomposition under their outward names. */
+  const filesHere = () => outwardNames(store.read()).told.get(store.read().current) ?? {};
 
   /** What was done beyond fitting. @param {boolean} alternatives @returns {Done} */
   function doneWith(alternatives) {
@@ -66,7 +70,7 @@ export function makePaper(store, pool, { given, known, summary }) {
     async methods() {
       const { answer } = store.read();
       if (answer === null) return null;
-      return pool()?.ask({ kind: "methods", key: answer.key, done: doneWith(known().length > 0) }) ?? null;
+      return pool()?.ask({ kind: "methods", key: answer.key, names: filesHere(), done: doneWith(known().length > 0) }) ?? null;
     },
 
     /** The technical note on the map in view. @returns {Promise<TechnicalRecord | null>} */
@@ -74,7 +78,7 @@ export function makePaper(store, pool, { given, known, summary }) {
       const { answer } = store.read();
       if (answer === null) return null;
       const { key, chosen: index } = answer;
-      return pool()?.ask({ kind: "record", key, index, done: doneWith(known().includes(index)), populations: given() }) ?? null;
+      return pool()?.ask({ kind: "record", key, names: filesHere(), index, done: doneWith(known().includes(index)), populations: given() }) ?? null;
     },
 
     /**
@@ -102,11 +106,13 @@ export function makePaper(store, pool, { given, known, summary }) {
       const answered = decompositions.flatMap((one) => (one.answer === null ? [] : [{ ...one, answer: one.id === current ? answer : one.answer }]));
       /** @type {ReportedTable[]} */
       const tables = [];
-      for (const { id, name, subject, answer: held } of answered) {
+      const { told: files, decompositions: labels } = outwardNames(store.read());
+      for (const { id, answer: held } of answered) {
         const first = freshMaps(held).findIndex((map) => "rv" in map);
         /** @type {Sheet | null} */
         const sheet = first < 0 ? null : await engine.ask({ kind: "sheet", key: held.key, index: first });
-        tables.push({ name, subject, answer: held, preamble: held.preamble, head: sheet?.head ?? null, series: id });
+        const preamble = await engine.ask({ kind: "preamble", key: held.key, names: files.get(id) ?? {} });
+        tables.push({ id, name: "", subject: "", ...labels.get(id), answer: held, preamble, head: sheet?.head ?? null });
         if (!isStill()) return null;
       }
       /** @type {ReportedMap[]} */
@@ -121,7 +127,7 @@ export function makePaper(store, pool, { given, known, summary }) {
         if (fitted && isStill()) one.trust = await engine.ask({ kind: "trust", key, index, populations });
         if (looked && isStill()) one.alternatives = await askHelper(engine, { kind: "alternatives", key, index, populations });
         if (parts.includes("notes") && isStill()) {
-          one.note = await engine.ask({ kind: "record", key, index, done: doneWith(looked), populations });
+          one.note = await engine.ask({ kind: "record", key, names: filesHere(), index, done: doneWith(looked), populations });
         }
         if (!isStill()) return null;
         told.push(one);
@@ -129,7 +135,7 @@ export function makePaper(store, pool, { given, known, summary }) {
       const shares = answered.length > 1 || answer.count > 1 ? await summary([threshold]) : null;
       /** @type {Methods | null} */
       const methods = parts.includes("methods")
-        ? await engine.ask({ kind: "methods", key, done: doneWith(told.some(({ alternatives }) => alternatives !== null)) })
+        ? await engine.ask({ kind: "methods", key, names: filesHere(), done: doneWith(told.some(({ alternatives }) => alternatives !== null)) })
         : null;
       if (!isStill()) return null;
       const at = answered.findIndex(({ id }) => id === current);

@@ -1,7 +1,7 @@
 /** Where what leaves is asked for: a report on paper or as a page, methods and technical notes to be pasted. */
 
 import { copyText, saveBlob } from "../export/out.js";
-import { reportOf } from "../report/report.js";
+import { writtenReport } from "../report/report.js";
 import { typedMaps } from "../report/numbers.js";
 import { printReport, reportPage } from "../report/ways.js";
 import { freshMaps } from "../session/decompositions.js";
@@ -99,8 +99,8 @@ export function showLeaving(session) {
       status.textContent = word(work !== null ? "leaving.ready" : given ? "leaving.given-up" : "leaving.changed");
       if (work === null) return null;
       const added = { person: need("leaving-person", HTMLInputElement).value.trim(), remarks: need("leaving-remarks", HTMLTextAreaElement).value.trim() };
-      const name = fileText(names.checked ? work.own.name : "", work.date);
-      return { ...reportOf(work, session.read(), added), name };
+      const name = fileText(session.read().namesShown ? work.own.name : "", work.date);
+      return { ...writtenReport(work, session.read(), added), name };
     } catch (error) {
       status.textContent = given ? word("leaving.given-up") : "";
       if (!given) session.fail(error);
@@ -138,9 +138,14 @@ export function showLeaving(session) {
   });
   numbers.addEventListener("input", count);
   numbers.addEventListener("change", () => tell(numbers.value.trim() === "" ? "" : chosen().fault));
-  names.addEventListener("change", () => {
-    need("leaving-hidden", HTMLElement).textContent = word(names.checked ? "leaving.shown" : "leaving.hidden");
-  });
+  names.addEventListener("change", () => session.showNames(names.checked));
+  session.watch(
+    ({ namesShown }) => namesShown,
+    (shown) => {
+      names.checked = shown;
+      need("leaving-hidden", HTMLElement).textContent = word(shown ? "leaving.shown" : "leaving.hidden");
+    },
+  );
   session.watch(({ answer }) => answer, count);
   session.watch(({ listed }) => listed, count);
   session.watch(({ threshold }) => threshold, count);

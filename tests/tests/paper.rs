@@ -1,0 +1,147 @@
+//! What leaves the page as a report: on paper, page by page, and as one file without a script.
+use inward_tests::{Browser, DroppedFile, Page, Paper, Surroundings, example, in_both_browsers};
+use serde_json::json;
+
+/// Three maps with names of files that nobody else is to read.
+fn answered(browser: Browser) -> Page {
+    let page = Page::open(browser);
+    let maps: String = example("watch_maps.tsv")
+        .lines()
+        .map(|line| line.split('\t').take(4).collect::<Vec<_>>().join("\t") + "\n")
+        .collect();
+    page.drop_files(&[
+        DroppedFile { name: "sub-Brown_electrodes.tsv", text: &example("watch_electrodes.tsv") },
+        DroppedFile { name: "sub-Brown_maps.tsv", text: &maps },
+    ]);
+    page.until("an answer", Page::rests);
+    page.wait_for_verdict();
+    page
+}
+
+/// Asks for a report and waits until it is made; what is printed stays in place until the printer is done.
+fn ask(page: &Page, button: &str) {
+    page.value("window.printed = 0; window.print = () => { window.printed++; window.called = document.title }");
+    page.click(button);
+    page.until("a report", |page| page.text("#leaving-status") == "The report is ready.");
+}
+
+/// The downloaded page of a report.
+fn saved(page: &Page) -> (String, String) {
+    let folder = page.session().downloads().to_owned();
+    for old in std::fs::read_dir(&folder).unwrap().flatten() {
+        if old.file_name().to_string_lossy().ends_with(".html") {
+            std::fs::remove_file(old.path()).unwrap();
+        }
+    }
+    ask(page, "#leaving-save");
+    let mut found = None;
+    page.until("a file", |_| {
+        found = std::fs::read_dir(&folder)
+            .unwrap()
+            .flatten()
+            .filter(|file| file.file_name().to_string_lossy().ends_with(".html"))
+            .find_map(|file| {
+                let text = std::fs::read_to_string(file.path()).unwrap_or_default();
+                text.trim_end().ends_with("</html>").then(|| (file.file_name().to_string_lossy().into_owned(), text))
+            });
+        found.is_some()
+    });
+    found.unwrap()
+}
+
+/// What is in the report that is being printed.
+fn printed(page: &Page) -> String {
+    page.until("paper", |page| page.value("return window.printed") == json!(1));
+    page.value("return document.querySelector('#report').textContent").as_str().unwrap().to_owned()
+}
+
+fn reports_leave_on_paper(browser: Browser) {
+    let page = answered(browser);
+    page.surround(Surroundings { dark: true, ..Surroundings::default() });
+    for (size, width, height, points) in [("a4", 21.0, 29.7, (595, 842)), ("letter", 21.59, 27.94, (612, 792))] {
+        page.value(&format!("document.querySelector('#leaving-{size}').click()"));
+        for (which, most) in [("the one in view", 5), ("all listed", 11)] {
+            page.choose("#leaving-which", which);
+            ask(&page, "#leaving-print");
+            let text = printed(&page);
+            for there in ["SHA-256", "dipolar", "medical device", "diagnostic", "Inward 0", "Name", "Remarks"] {
+                assert!(text.contains(there), "{there}: {text}");
+            }
+            assert!(!text.contains("Brown"), "{text}");
+            let maps = page.value("return document.querySelectorAll('#report .map').length").as_u64().unwrap();
+            assert_eq!(maps, if which == "all listed" { 3 } else { 1 });
+            let title = page.value("return window.called");
+            assert!(
+                title.as_str().unwrap().starts_with("inward-report-20") && !title.to_string().contains("Brown"),
+                "{title}"
+            );
+            let pdf = page.session().print(width, height).unwrap();
+            let file = inward_tests::screenshot_file(&format!("{}-report-{size}-{maps}", browser.name()));
+            std::fs::write(file.with_extension("pdf"), &pdf).unwrap();
+            let paper = Paper::read(&pdf).expect("a document with pages");
+            assert!(paper.points.0.abs_diff(points.0) <= 1 && paper.points.1.abs_diff(points.1) <= 1, "{paper:?}");
+            // A summary, each map and its note, and the methods: none shares its paper, and none is cut.
+            let least = 2 + 2 * usize::try_from(maps).unwrap();
+            assert!((least..=2 * least).contains(&paper.pages) && paper.pages <= most.max(2 * least), "{paper:?}");
+            page.until("the page again", |page| {
+                page.value("dispatchEvent(new Event('afterprint'))");
+                !page.exists("#report")
+            });
+            assert_eq!(page.value("return document.title"), json!("Inward"));
+        }
+    }
+}
+
+fn reports_leave_as_a_page(browser: Browser) {
+    let page = answered(browser);
+    let (name, text) = saved(&page);
+    assert!(!name.contains("Brown") && !text.contains("Brown"), "{name}");
+    assert!(text.len() <= 300_000, "{} bytes", text.len());
+    let lower = text.to_lowercase();
+    for absent in ["<script", " style=", " onload", " onclick", "javascript:", "<iframe", "<object", "<form"] {
+        assert!(!lower.contains(absent), "{absent}");
+    }
+    let outside = lower.replace("http://www.w3.org/", "");
+    assert!(!outside.contains("http:") && !outside.contains("https:"), "no address");
+    assert!(text.contains("default-src 'none'; style-src 'sha256-"));
+    let folder = page.session().downloads().join(&name);
+    page.session().go(&format!("file://{}", folder.display())).unwrap();
+    assert_eq!(page.accessibility_findings(), Vec::<String>::new());
+    let levels = page.value("return [...document.querySelectorAll('h1,h2,h3')].map((e) => Number(e.localName[1]))");
+    let levels: Vec<i64> = levels.as_array().unwrap().iter().filter_map(|level| level.as_i64()).collect();
+    assert_eq!(levels[0], 1);
+    assert!(levels.windows(2).all(|pair| pair[1] - pair[0] <= 1), "{levels:?}");
+    let fair = "const bare = [...document.querySelectorAll('table')].filter((t) => !t.caption || [...t.querySelectorAll('th')].some((th) => !th.scope));\
+                const ids = [...document.querySelectorAll('[id]')].map((e) => e.id);\
+                const mute = [...document.querySelectorAll('svg[role=img]')].filter((s) => !s.querySelector('title').textContent || !s.querySelector('desc').textContent);\
+                return [bare.length, ids.length - new Set(ids).size, mute.length, document.documentElement.lang, getComputedStyle(document.querySelector('h2')).fontWeight]";
+    assert_eq!(page.value(fair), json!([0, 0, 0, "en-GB", "700"]), "the style is taken");
+}
+
+fn choices_of_a_report_are_kept_to(browser: Browser) {
+    let page = answered(browser);
+    page.choose("#leaving-which", "by number");
+    for (entry, told) in [("2-1", "backwards"), ("9", "beyond"), ("x", "no number"), ("", "No map is chosen")] {
+        page.fill("#leaving-numbers", entry);
+        page.click("#leaving-save");
+        assert!(page.text("#leaving-fault").contains(told), "{entry}: {}", page.text("#leaving-fault"));
+    }
+    page.fill("#leaving-numbers", "1, 2-3");
+    assert_eq!(page.text("#leaving-count"), "3\u{a0}maps");
+    page.value("document.querySelector('#leaving-person').value = 'A. Reader'");
+    page.click("#leaving-names");
+    let (name, text) = saved(&page);
+    assert!(text.contains("Brown") && text.contains("A. Reader"), "{name}");
+    assert_eq!(text.matches("class=\"leaf map\"").count(), 3);
+    assert_eq!(page.accessibility_findings(), Vec::<String>::new());
+
+    // Given up while it is being made.
+    page.value(
+        "document.querySelector('#leaving-explained').checked = true;\
+         new MutationObserver(() => document.querySelector('#leaving-stop').click()).observe(document.querySelector('#leaving-status'), { childList: true });\
+         document.querySelector('#leaving-save').click()",
+    );
+    page.until("it is given up", |page| page.text("#leaving-status") == "The report was given up.");
+}
+
+in_both_browsers!(reports_leave_on_paper, reports_leave_as_a_page, choices_of_a_report_are_kept_to);
