@@ -72,9 +72,11 @@ fn buttons_copy_plain_numbers(browser: Browser) {
     page.click("#empty [data-example='lamp']");
     page.wait_for_verdict();
     page.until("populations", |page| page.visible("#population-table") && !page.visible("#drawing-line"));
-    for (button, table) in [("#copy-populations", "#population-table"), ("#copy-table", "#numbers")] {
+    for (button, table, heading) in
+        [("#copy-populations", "#population-table", "Sources\t"), ("#copy-table", "#numbers", "Quantity\t")]
+    {
         page.click(button);
-        page.until("the copy", |page| page.clipboard().contains('\t'));
+        page.until("the copy", |page| page.clipboard().starts_with(heading));
         let text = page.clipboard();
         assert!(!text.contains(['\u{2212}', '\u{a0}', '\u{2009}', '\u{202f}']), "{text}");
         let rows = page.value(&format!("return document.querySelectorAll('{table} tbody tr:not(.setting)').length"));
