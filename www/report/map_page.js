@@ -89,6 +89,6 @@ export function mapPage({ index, sheet, trust, alternatives }, { answer, preambl
 export function notePage({ title, parts }) {
   return [
     put("h2", {}, title),
-    ...parts.flatMap(({ heading, lines }) => [put("h3", {}, heading), ...lines.map((line) => paragraph(line))]),
+    put("div", { class: "columns" }, ...parts.flatMap(({ heading, lines }) => [put("h3", {}, heading), ...lines.map((line) => paragraph(line))])),
   ];
 }

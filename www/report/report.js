@@ -75,7 +75,6 @@ export function writtenReport(work, state, added) {
         filesTable(own.preamble),
         paragraph(`${own.head === null ? "" : `${word("head")} ${own.head.title}. `}${outText(own.preamble)}`, "small"),
         room(added),
-        paragraph(word("caution"), "small"),
       ]);
     }
     if (one.note !== null) section("note", what, [...notePage(one.note), room(added)]);
