@@ -60,7 +60,7 @@ fn reports_leave_on_paper(browser: Browser) {
     page.surround(Surroundings { dark: true, ..Surroundings::default() });
     for (size, width, height, points) in [("a4", 21.0, 29.7, (595, 842)), ("letter", 21.59, 27.94, (612, 792))] {
         page.value(&format!("document.querySelector('#leaving-{size}').click()"));
-        for (which, most) in [("the one in view", 5), ("all listed", 11)] {
+        for which in ["the one in view", "all listed"] {
             page.choose("#leaving-which", which);
             ask(&page, "#leaving-print");
             let text = printed(&page);
@@ -82,7 +82,8 @@ fn reports_leave_on_paper(browser: Browser) {
             assert!(paper.points.0.abs_diff(points.0) <= 1 && paper.points.1.abs_diff(points.1) <= 1, "{paper:?}");
             // A summary, each map and its note, and the methods: none shares its paper, and none is cut.
             let least = 2 + 2 * usize::try_from(maps).unwrap();
-            assert!((least..=2 * least).contains(&paper.pages) && paper.pages <= most.max(2 * least), "{paper:?}");
+            let most = if browser == Browser::Chromium { least } else { 2 * least };
+            assert!((least..=most).contains(&paper.pages), "{paper:?}, not {least}");
             page.until("the page again", |page| {
                 page.value("dispatchEvent(new Event('afterprint'))");
                 !page.exists("#report")
@@ -121,7 +122,7 @@ fn reports_leave_as_a_page(browser: Browser) {
 fn choices_of_a_report_are_kept_to(browser: Browser) {
     let page = answered(browser);
     page.choose("#leaving-which", "by number");
-    for (entry, told) in [("2-1", "backwards"), ("9", "beyond"), ("x", "no number"), ("", "No map is chosen")] {
+    for (entry, told) in [("", "No map is chosen"), ("2-1", "backwards"), ("9", "beyond"), ("x", "no number")] {
         page.fill("#leaving-numbers", entry);
         page.click("#leaving-save");
         assert!(page.text("#leaving-fault").contains(told), "{entry}: {}", page.text("#leaving-fault"));
