@@ -24,7 +24,7 @@ function othersOf(alternatives) {
   return [
     put("h3", {}, word("alternatives")),
     paragraph(alternatives.sentence),
-    tableOf(word("alternatives"), heads, alternativeRows(alternatives), "plain"),
+    tableOf(word("alternatives"), heads, alternativeRows(alternatives), "scant"),
     bulletsOf("", lines, "small"),
   ];
 }
@@ -50,7 +50,7 @@ function trustOf({ region, cautions }, verdict) {
       "div",
       { class: "beside" },
       numbersOf(word("region.numbers"), [...region.rows, ...(region.repeats?.rows ?? [])]),
-      put("div", {}, tableOf(word("region.causes"), ["region.cause", "region.size", "region.sd"].map(word), causes, "plain"), paragraph(region.structure, "small")),
+      put("div", {}, tableOf(word("region.causes"), ["region.cause", "region.size", "region.sd"].map(word), causes, "scant"), paragraph(region.structure, "small")),
     ),
     bulletsOf("", region.notes, "small"),
   ];

@@ -47,7 +47,7 @@ export function tableOf(caption, heads, rows, kind = "") {
 /** Numbers with their units. @param {string} caption @param {SheetRow[]} rows */
 export function numbersOf(caption, rows) {
   const heads = ["numbers.quantity", "numbers.value"].map(word);
-  return tableOf(caption, heads, rows.map(({ label, value, unit }) => [label, `${value} ${unit}`.trim()]), "numbers");
+  return tableOf(caption, heads, rows.map(({ label, value, unit }) => [label, `${value} ${unit}`.trim()]), "amounts");
 }
 
 /** @param {FigureParts} parts @param {string} prefix of names within it, its own in the report @param {string} words below it @param {number} [width] */
