@@ -59,6 +59,7 @@ export function dipolesFigure(answer, threshold) {
     title: word("dipoles"),
     description: dipoleCountText(dipoles.length, dipoles.length, shareAtText(threshold), "faint"),
     width: 3 * REPORTED_VIEW,
+    least: 3 * REPORTED_VIEW,
     paint: (width, around, penAt) => {
       HEAD_VIEWS.forEach(({ view, from, sides }, k) => {
         const letters = sides.map((side) => ({ side, text: word(`map.${side}`) }));

@@ -41,12 +41,12 @@ function mapsTable({ answer }, columns) {
   const rows = fitted.slice(0, MOST_TABLE_LINES).map(({ map, index }) => {
     const verdict = answer.verdicts?.[index];
     const said = verdict ? put("span", { class: "said" }, verdictMark(verdict), " ", word(`verdict.${verdict}`)) : word("verdict.none");
-    return [name(index), said, ...shown.map(({ code, unit }) => typeset(cellText(map, columns, code).replace(` ${symbolOf(unit)}`, "")))];
+    return [name(index), ...(answer.verdicts === null ? [] : [said]), ...shown.map(({ code, unit }) => typeset(cellText(map, columns, code).replace(` ${symbolOf(unit)}`, "")))];
   });
-  const none = unfitted.slice(0, MOST_TABLE_LINES).map(({ index }) => [name(index), word("report.not-fitted"), ...shown.map(() => "")]);
+  const none = unfitted.slice(0, MOST_TABLE_LINES).map(({ index }) => [`${name(index)}, ${word("report.not-fitted")}`, ...(answer.verdicts === null ? [] : [""]), ...shown.map(() => "")]);
   const more = fitted.length - rows.length;
   return [
-    tableOf(word("report.maps"), [word("ledger.number"), word("verdict"), ...shown.map(columnHead)], [...rows, ...none], "columns"),
+    tableOf(word("report.maps"), [word("ledger.number"), ...(answer.verdicts === null ? [] : [word("verdict")]), ...shown.map(columnHead)], [...rows, ...none], "columns"),
     more > 0 ? paragraph(notListedText(more, fitted.length), "small") : null,
   ];
 }
