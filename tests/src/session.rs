@@ -157,6 +157,13 @@ impl Session {
         decoded(&self.post("/print", &json!({ "page": page, "background": false, "shrinkToFit": true }))?)
     }
 
+    /// The document printed by Chromium on the paper and with the margins that its own style asks for.
+    pub fn print_as_styled(&self) -> Outcome<Vec<u8>> {
+        let parameters = json!({ "preferCSSPageSize": true });
+        let printed = self.post("/goog/cdp/execute", &json!({ "cmd": "Page.printToPDF", "params": parameters }))?;
+        decoded(&printed["data"])
+    }
+
     /// A command of Chromium's own protocol.
     pub fn chromium_command(&self, command: &str, parameters: &Value) -> Outcome<()> {
         self.post("/goog/cdp/execute", &json!({ "cmd": command, "params": parameters })).map(|_| ())

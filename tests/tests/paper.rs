@@ -75,7 +75,11 @@ fn reports_leave_on_paper(browser: Browser) {
                 title.as_str().unwrap().starts_with("inward-report-20") && !title.to_string().contains("Brown"),
                 "{title}"
             );
-            let pdf = page.session().print(width, height).unwrap();
+            let pdf = if browser == Browser::Chromium {
+                page.session().print_as_styled().unwrap()
+            } else {
+                page.session().print(width, height).unwrap()
+            };
             let file = inward_tests::screenshot_file(&format!("{}-report-{size}-{maps}", browser.name()));
             std::fs::write(file.with_extension("pdf"), &pdf).unwrap();
             let paper = Paper::read(&pdf).expect("a document with pages");
