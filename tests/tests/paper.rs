@@ -1,6 +1,8 @@
 //! What leaves the page as a report: on paper, page by page, and as one file without a script.
 use inward_tests::{Browser, DroppedFile, Page, Paper, Surroundings, example, in_both_browsers};
+use scraper::Html;
 use serde_json::json;
+use std::borrow::Cow;
 
 /// Three maps with names of files that nobody else is to read.
 fn answered(browser: Browser) -> Page {
@@ -55,6 +57,29 @@ fn printed(page: &Page) -> String {
     page.value("return document.querySelector('#report').textContent").as_str().unwrap().to_owned()
 }
 
+/// Each sheet has its words as text, not as outlines: what a person searches for or copies.
+fn text_can_be_selected(page: &Page, text: &str, paper: &Paper) {
+    let last = paper.pages() - 1;
+    let is_sum = |word: &&str| word.len() == 64 && word.chars().all(|c| c.is_ascii_hexdigit());
+    let sum = text.split(|c: char| !c.is_ascii_hexdigit()).find(is_sum).expect("a file with its SHA-256");
+    // Of several maps, the first in the list comes first.
+    let verdict = if paper.pages() == 4 { page.text("#verdict-said") } else { "Reasons of the verdict".into() };
+    for (sheet, text) in [
+        (0, sum),
+        (0, "Notes and warnings"),
+        (1, "Residual variance"),
+        (1, &verdict),
+        (2, "not a diagnostic finding"),
+        (last, "References"),
+    ] {
+        assert!(paper.has(sheet, text), "{text} on sheet {sheet}: {}", paper.sheets[sheet]);
+    }
+    for sheet in 0..=last {
+        assert!(paper.has(sheet, "research use, not a medical device"), "sheet {sheet}: {}", paper.sheets[sheet]);
+    }
+    assert!(!paper.has(0, "References"), "a sheet has its own text alone");
+}
+
 fn reports_leave_on_paper(browser: Browser) {
     let page = answered(browser);
     page.surround(Surroundings { dark: true, ..Surroundings::default() });
@@ -87,7 +112,10 @@ fn reports_leave_on_paper(browser: Browser) {
             // A summary, each map and its note, and the methods: none shares its paper, and none is cut.
             let least = 2 + 2 * usize::try_from(maps).unwrap();
             let most = if browser == Browser::Chromium { least } else { 2 * least };
-            assert!((least..=most).contains(&paper.pages), "{paper:?}, not {least}");
+            assert!((least..=most).contains(&paper.pages()), "{} sheets, not {least}", paper.pages());
+            if browser == Browser::Chromium {
+                text_can_be_selected(&page, &text, &paper);
+            }
             page.until("the page again", |page| {
                 page.value("dispatchEvent(new Event('afterprint'))");
                 !page.exists("#report")
@@ -106,6 +134,9 @@ fn reports_leave_as_a_page(browser: Browser) {
     for absent in ["<script", " style=", " onload", " onclick", "javascript:", "<iframe", "<object", "<form"] {
         assert!(!lower.contains(absent), "{absent}");
     }
+    // The parser of a browser engine, which mends faults and tells of them.
+    assert_eq!(Html::parse_document(&text).errors, Vec::<Cow<str>>::new());
+    assert!(!Html::parse_document(&text.replacen("</h1>", "</h2>", 1)).errors.is_empty(), "a planted fault is found");
     let outside = lower.replace("http://www.w3.org/", "");
     assert!(!outside.contains("http:") && !outside.contains("https:"), "no address");
     assert!(text.contains("default-src 'none'; style-src 'sha256-"));

@@ -231,7 +231,7 @@ fn paper_holds_the_answer(browser: Browser) {
             paper.points.0.abs_diff(points.0) <= 1 && paper.points.1.abs_diff(points.1) <= 1,
             "{paper:?} for {points:?}"
         );
-        assert!((1..=7).contains(&paper.pages), "{paper:?}");
+        assert!((1..=7).contains(&paper.pages()), "{paper:?}");
         for (id, words) in [
             ("map-measured", &["L", "R", "front", "seen from above"][..]),
             ("view-above", &["L", "R", "seen from above"]),
