@@ -180,4 +180,40 @@ fn choices_of_a_report_are_kept_to(browser: Browser) {
     page.until("it is given up", |page| page.text("#leaving-status") == "The report was given up.");
 }
 
+/// Two decompositions and a map that cannot be fitted: each has its summary, both their comparison, the map its reason.
+#[test]
+fn decompositions_and_maps_without_a_fit_are_reported() {
+    let page = Page::open(Browser::Chromium);
+    page.session().run("location.hash = 'example=night'", &[]).unwrap();
+    page.until("both", |page| page.rests() && page.texts("#decomposition-list > li").len() == 2);
+    page.wait_for_verdict();
+    let (_, text) = saved(&page);
+    assert!(text.len() <= 300_000, "{} bytes", text.len());
+    assert_eq!(Html::parse_document(&text).errors, Vec::<Cow<str>>::new());
+    for there in ["Summary · independent", "Summary · principal", "Decompositions compared", "32 electrodes used", "decompositions"]
+    {
+        assert!(text.contains(there), "{there}");
+    }
+
+    let flat: Vec<String> = example("watch_maps.tsv")
+        .lines()
+        .enumerate()
+        .map(|(at, line)| {
+            let cells: Vec<&str> = line.split('\t').collect();
+            format!("{}\t{}\t{}\n", cells[0], cells[1], if at == 0 { "flat" } else { "3" })
+        })
+        .collect();
+    page.drop_files(&[
+        DroppedFile { name: "electrodes.tsv", text: &example("watch_electrodes.tsv") },
+        DroppedFile { name: "maps.tsv", text: &flat.concat() },
+    ]);
+    page.until("two maps", |page| page.rests() && page.exists("#ledger [data-index='1']"));
+    page.wait_for_verdict();
+    page.choose("#leaving-which", "all listed");
+    let (_, text) = saved(&page);
+    assert_eq!(text.matches("class=\"leaf map\"").count(), 2);
+    let reason = page.text("#ledger [data-index='1'] .ledger-place");
+    assert!(!reason.is_empty() && text.contains(&reason), "{reason}");
+}
+
 in_both_browsers!(reports_leave_on_paper, reports_leave_as_a_page, choices_of_a_report_are_kept_to);

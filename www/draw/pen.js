@@ -13,6 +13,18 @@ function rounded(value) {
   return Math.round(value * DECIMALS) / DECIMALS;
 }
 
+/** Whether the way over b is straight on. @param {number[]} a @param {number[]} b @param {number[]} c */
+function isStraight(a, b, c) {
+  const [along, across] = [
+    [c[0] - a[0], c[1] - a[1]],
+    [b[0] - a[0], b[1] - a[1]],
+  ];
+  const length = Math.hypot(...along);
+  const on = along[0] * across[0] + along[1] * across[1];
+  const off = along[0] * across[1] - along[1] * across[0];
+  return length > 0 && on >= 0 && on <= length ** 2 && Math.abs(off) <= STRAIGHT * length;
+}
+
 /**
  * @param {string} name
  * @param {Attributes} attributes
@@ -38,6 +50,8 @@ export function textWidth(text, font) {
 
 /** What a canvas saves and restores, as far as it is used here. */
 const PEN_STATE = /** @type {const} */ (["strokeStyle", "fillStyle", "lineWidth", "globalAlpha", "lineCap", "lineJoin", "font", "textAlign", "textBaseline"]);
+/** A point this near to the line between those beside it, in pixels, is left out. */
+const STRAIGHT = 0.02;
 /** Circles up to this radius are dots. */
 const LARGEST_DOT = 3;
 
@@ -54,6 +68,8 @@ export class SvgPen {
   /** @type {number[]} */
   #dash = [];
   #path = "";
+  /** The last line of the path, and the path without it. @type {{ from: number[], to: number[], before: string } | null} */
+  #last = null;
   /** The path as dots, as long as it has no more than circles of one radius. @type {{ radius: number, path: string } | null} */
   #dots = null;
   /** A stroke around letters belongs to the letters that follow. @type {Attributes} */
@@ -112,24 +128,37 @@ export class SvgPen {
   }
   beginPath() {
     this.#path = "";
+    this.#last = null;
     this.#dots = { radius: 0, path: "" };
   }
   /** @param {number} x @param {number} y */
   moveTo(x, y) {
+    const to = [this.#x(x), this.#y(y)];
     this.#path += `M${this.#point(x, y)}`;
+    this.#last = { from: to, to, before: this.#path };
   }
   /** @param {number} x @param {number} y */
   lineTo(x, y) {
     this.#dots = null;
-    this.#path += `${this.#path === "" ? "M" : "L"}${this.#point(x, y)}`;
+    if (this.#path === "") return this.moveTo(x, y);
+    const to = [this.#x(x), this.#y(y)];
+    const { from, to: end, before } = this.#last ?? { from: to, to, before: "" };
+    const straight = this.#last !== null && isStraight(from, end, to);
+    if (straight) this.#path = before;
+    this.#last = { from: straight ? from : end, to, before: this.#path };
+    this.#path += `L${this.#point(x, y)}`;
+    // What came before was a whole figure: nothing is straight on from it.
+    if (end === to) this.#last.before = this.#path;
   }
   closePath() {
+    this.#last = null;
     this.#dots = null;
     this.#path += "Z";
   }
   /** A whole circle. @param {number} x @param {number} y @param {number} radius */
   arc(x, y, radius) {
     const r = this.#size(radius);
+    this.#last = null;
     // A dot is a line of next to no length with round ends: a quarter of the letters.
     const dots = this.#dots?.path ?? "";
     this.#dots = dots === "" || this.#dots?.radius === radius ? { radius, path: `${dots}M${this.#point(x, y)}h.01` } : null;

@@ -80,7 +80,7 @@ export function tablePage(table, { line, threshold, columns, prefix }) {
     several ? figureOf(dipolesFigure(answer, threshold), `${prefix}dipoles-`, dipolesFigure(answer, threshold).description) : null,
     ...(several ? mapsTable(table, columns) : []),
     head === null ? null : put("h3", {}, `${word("head")} ${head.title}`),
-    head === null ? null : paragraph(`${head.source} ${head.rows.map(({ label, value, unit }) => `${label}: ${value} ${unit}`.trim()).join("; ")}.`, "small"),
+    head === null ? null : paragraph(`${head.source === "" ? "" : `${head.source}. `}${head.rows.map(({ label, value, unit }) => `${label}: ${value} ${unit}`.trim()).join("; ")}.`, "small"),
     bulletsOf(word("report.understood"), understoodLines(preamble), "small"),
     bulletsOf(word("report.noticed"), preamble.notes.map(({ severity, message }) => (severity === "warning" ? `${word("note.warning")}: ${message}` : message)), "small"),
   ];
