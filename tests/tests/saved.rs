@@ -77,7 +77,7 @@ fn a_session_comes_back_digit_by_digit(browser: Browser) {
     again.until("the sign", |page| page.text("#work-state").starts_with("Not saved"));
 
     // Names go along when they are asked for; taking work up can be undone.
-    page.click("#work-names");
+    click(&page, "#work-names");
     let named = save(&page);
     assert!(named.contains("sub-doe_jane_first.tsv") && report(&page).contains("sub-doe_jane_first.tsv"));
     again.drop_files(&[DroppedFile { name: "w.json", text: &named }]);
