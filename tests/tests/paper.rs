@@ -190,8 +190,13 @@ fn decompositions_and_maps_without_a_fit_are_reported() {
     let (_, text) = saved(&page);
     assert!(text.len() <= 300_000, "{} bytes", text.len());
     assert_eq!(Html::parse_document(&text).errors, Vec::<Cow<str>>::new());
-    for there in ["Summary · independent", "Summary · principal", "Decompositions compared", "32 electrodes used", "decompositions"]
-    {
+    for there in [
+        "Summary · independent",
+        "Summary · principal",
+        "Decompositions compared",
+        "32 electrodes used",
+        "decompositions",
+    ] {
         assert!(text.contains(there), "{there}");
     }
 
