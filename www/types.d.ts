@@ -1080,6 +1080,8 @@ interface Step {
   decompositions: Decomposition[];
   current: number;
   setAside: SessionState["setAside"];
+  /** Where the change was of it, too. */
+  threshold?: number;
   /** What the change was of. */
   what: string[];
 }

@@ -82,6 +82,9 @@ fn a_session_comes_back_digit_by_digit(browser: Browser) {
     assert!(named.contains("sub-doe_jane_first.tsv") && report(&page).contains("sub-doe_jane_first.tsv"));
     again.drop_files(&[DroppedFile { name: "w.json", text: &named }]);
     again.until("names", |page| page.rests() && page.text("#maps-loaded").contains("jane"));
+    // That names were in a file does not let them out of this tab.
+    assert_eq!(again.value("return document.querySelector('#work-names').checked"), json!(false));
+    assert!(!report(&again).contains("jane") && !save(&again).contains("jane"));
     click(&again, "#undo");
     again.until("without names", |page| page.rests() && !page.text("#maps-loaded").contains("jane"));
 
@@ -163,6 +166,13 @@ fn what_is_damaged_changes_nothing(browser: Browser) {
     page.until("it has to come alone", |page| page.failure_text().contains("has to come alone"));
     click(&page, "#failure-dismiss");
     assert!(report(&page) == before, "the session goes on");
+    // What is shared by all goes back too.
+    let threshold = |page: &Page| serde_json::from_str::<Value>(&save(page)).unwrap()["threshold"].clone();
+    let other = with(&|work| work["threshold"] = json!(0.05));
+    page.drop_files(&[DroppedFile { name: "work.json", text: &other }]);
+    page.until("another threshold", |page| page.rests() && threshold(page) == json!(0.05));
+    click(&page, "#undo");
+    page.until("the threshold as before", |page| page.rests() && threshold(page) == json!(0.1));
     // A setting that the engine refuses is told by it, and undone.
     let odd = with(&|work| work["decompositions"][0]["settings"]["colour"] = json!("red"));
     page.drop_files(&[DroppedFile { name: "work.json", text: &odd }]);

@@ -9,7 +9,7 @@ const DECIMALS = 100;
 /** @typedef {Record<string, string | number>} Attributes */
 
 /** @param {number} value CSS pixels */
-function rounded(value) {
+export function rounded(value) {
   return Math.round(value * DECIMALS) / DECIMALS;
 }
 

@@ -91,6 +91,7 @@ function closeStudy(key) {
   studies.delete(key);
   namedRequests.delete(key);
   studyBases.delete(key);
+  if (toldStudy?.of === study) forgetTold();
   if (study !== latestStudy) study?.close();
 }
 
@@ -159,6 +160,9 @@ function namedStudy(study, names = {}) {
   return Object.keys(names).length === 0 ? study : study.renamed(names);
 }
 
+/** The study that was told of last: a report asks about one map after the other. @type {{ of: Study, by: string, named: Study } | null} */
+let toldStudy = null;
+
 /**
  * What is told of a study under the names that may leave.
  * @template T
@@ -166,13 +170,18 @@ function namedStudy(study, names = {}) {
  * @param {Record<string, string> | undefined} names
  * @param {(study: Study) => T} tell
  */
-function outward(study, names, tell) {
-  const named = namedStudy(study, names);
-  try {
-    return tell(named);
-  } finally {
-    if (named !== study) named.close();
+function outward(study, names = {}, tell) {
+  const by = JSON.stringify(names);
+  if (toldStudy?.of !== study || toldStudy.by !== by) {
+    forgetTold();
+    toldStudy = { of: study, by, named: namedStudy(study, names) };
   }
+  return tell(toldStudy.named);
+}
+
+function forgetTold() {
+  if (toldStudy !== null && toldStudy.named !== toldStudy.of) toldStudy.named.close();
+  toldStudy = null;
 }
 
 /** The same whatever labels hold. @param {Methods} methods @returns {Methods} */
@@ -318,16 +327,21 @@ async function answerTask(message) {
       const { keys, members, names, settings } = message;
       /** @type {ComparedStudy[]} */
       const list = [];
+      /** @type {Study[]} */
+      const renamed = [];
       try {
         for (const [at, key] of keys.entries()) {
-          list.push({ ...members[at], study: namedStudy(studyOf(key), names?.[at]) });
+          const held = studyOf(key);
+          const study = namedStudy(held, names?.[at]);
+          if (study !== held) renamed.push(study);
+          list.push({ ...members[at], study });
           self.postMessage({ id, progress: { done: at + 1, total: keys.length } });
           await breathe();
         }
         const report = workerEngine.compareStudies(list, settings);
         return self.postMessage({ id, value: new Blob(comparisonParts(report), { type: "application/json" }) });
       } finally {
-        list.forEach(({ study }, at) => study !== studies.get(keys[at]) && study.close());
+        for (const study of renamed) study.close();
       }
     }
     case "population-key": {

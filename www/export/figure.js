@@ -1,6 +1,6 @@
 /** Figures as files: SVG with its own colours, and PNG made of it by the browser. */
 
-import { svgElement } from "../draw/pen.js";
+import { rounded, svgElement } from "../draw/pen.js";
 import { withResolution } from "./png.js";
 
 /** @import { Surroundings } from "../draw/canvas.js" */
@@ -41,13 +41,8 @@ export function emptyFigure(title, description) {
 export function sizeFigure(figure, width, height, shown, inMillimetres = false) {
   const [unit, times] = inMillimetres ? ["mm", MM_A_PIXEL] : ["", 1];
   const sides = { width: shown, height: (height * shown) / width };
-  figure.setAttribute("viewBox", `0 0 ${hundredths(width)} ${hundredths(height)}`);
-  for (const [name, value] of Object.entries(sides)) figure.setAttribute(name, `${hundredths(value * times)}${unit}`);
-}
-
-/** @param {number} value */
-function hundredths(value) {
-  return Math.round(100 * value) / 100;
+  figure.setAttribute("viewBox", `0 0 ${rounded(width)} ${rounded(height)}`);
+  for (const [name, value] of Object.entries(sides)) figure.setAttribute(name, `${rounded(value * times)}${unit}`);
 }
 
 /** @param {SVGSVGElement} figure */

@@ -1,11 +1,10 @@
 /** Figures of whole decompositions: curves of the near-dipolar share, and every dipole in the head. */
 
-import { paintShares, sharesHeight } from "../draw/curves.js";
+import { paintShares, shareAt, sharesHeight } from "../draw/curves.js";
 import { paintDipoleLegend, paintDipoles } from "../draw/dipoles.js";
 import { freshMaps } from "../session/decompositions.js";
 import { percentText } from "../text/figures.js";
 import { dipoleCountText, noun, shareAtText, shareTitle, word } from "../text/words.js";
-import { shareAt } from "../draw/curves.js";
 import { HEAD_VIEWS } from "../views/plates.js";
 import { shellsOf } from "../views/three_views.js";
 

@@ -43,11 +43,12 @@ function mapsTable({ answer }, columns) {
     const said = verdict ? put("span", { class: "said" }, verdictMark(verdict), " ", word(`verdict.${verdict}`)) : word("verdict.none");
     return [name(index), ...(answer.verdicts === null ? [] : [said]), ...shown.map(({ code, unit }) => typeset(cellText(map, columns, code).replace(` ${symbolOf(unit)}`, "")))];
   });
-  const none = unfitted.slice(0, MOST_TABLE_LINES).map(({ index }) => [`${name(index)}, ${word("report.not-fitted")}`, ...(answer.verdicts === null ? [] : [""]), ...shown.map(() => "")]);
-  const more = fitted.length - rows.length;
+  const none = unfitted.slice(0, MOST_TABLE_LINES - rows.length).map(({ index }) => [`${name(index)}, ${word("report.not-fitted")}`, ...(answer.verdicts === null ? [] : [""]), ...shown.map(() => "")]);
+  const all = fitted.length + unfitted.length;
+  const more = all - rows.length - none.length;
   return [
     tableOf(word("report.maps"), [word("ledger.number"), ...(answer.verdicts === null ? [] : [word("verdict")]), ...shown.map(columnHead)], [...rows, ...none], "columns"),
-    more > 0 ? paragraph(notListedText(more, fitted.length), "small") : null,
+    more > 0 ? paragraph(notListedText(more, all), "small") : null,
   ];
 }
 
@@ -72,12 +73,13 @@ export function tablePage(table, { line, threshold, columns, prefix }) {
   const used = preamble.electrodes.filter((electrode) => electrode.used).length;
   const components = preamble.understood.columns_are === "components";
   const several = fitted > 1;
+  const dipoles = dipolesFigure(answer, threshold);
   return [
     put("h2", {}, [word("report.summary"), name, subject].filter((part) => part !== "").map(shortName).join(" · ")),
     paragraph(`${factsOfTable(answer.count, fitted, used)} ${outText(preamble)} ${word("report.unit")}: ${word(`unit.${answer.settings.mapUnit}`)}.`),
     filesTable(preamble),
     several && line !== undefined ? figureOf(sharesFigure([line], threshold, components), `${prefix}shares-`, "", 620) : null,
-    several ? figureOf(dipolesFigure(answer, threshold), `${prefix}dipoles-`, dipolesFigure(answer, threshold).description) : null,
+    several ? figureOf(dipoles, `${prefix}dipoles-`, dipoles.description) : null,
     ...(several ? mapsTable(table, columns) : []),
     head === null ? null : put("h3", {}, `${word("head")} ${head.title}`),
     head === null ? null : paragraph(`${head.source === "" ? "" : `${head.source}. `}${head.rows.map(({ label, value, unit }) => `${label}: ${value} ${unit}`.trim()).join("; ")}.`, "small"),

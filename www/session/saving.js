@@ -50,13 +50,11 @@ export function makeSaving(store, digest, { step, ask, explained, explainAgain }
 
     /** Takes up saved work in the place of all that is there, which can be undone. @param {InwardContent} content */
     async restore(content) {
-      const { decompositions, current, threshold, namesShown, explained: maps } = await readWork(content, digest);
+      const { decompositions, current, threshold, explained: maps } = await readWork(content, digest);
       const one = /** @type {Decomposition} */ (decompositions.find(({ id }) => id === current));
       const { inputs, settings, example } = one;
-      step(
-        { decompositions, current, inputs, settings, example, answer: null, failure: null, setAside: null, threshold, namesShown },
-        ["work"],
-      );
+      // Whether names go along with what leaves is for whoever sits here to say, not for the file.
+      step({ decompositions, current, inputs, settings, example, answer: null, failure: null, setAside: null, threshold }, ["work"]);
       saved = losable(store.read());
       await ask();
       explainAgain(maps);

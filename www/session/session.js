@@ -123,7 +123,8 @@ export function makeSession() {
     const kept = patch.decompositions ?? state.decompositions;
     // Answers of those that stay go on; those of the others are there again when it is undone.
     const before = state.decompositions.map((one) => (kept.some(({ id }) => id === one.id) ? { ...one, answer: null } : one));
-    const steps = [...state.past.slice(1 - MOST_STEPS), stepOf({ ...state, decompositions: before }, what)];
+    const moved = patch.threshold === undefined ? {} : { threshold: state.threshold };
+    const steps = [...state.past.slice(1 - MOST_STEPS), { ...stepOf({ ...state, decompositions: before }, what), ...moved }];
     const held = () => heldBytes(steps.flatMap(({ decompositions }) => decompositions.map(({ inputs }) => inputs)));
     while (steps.length > 1 && held() > MOST_PAST_BYTES) steps.shift();
     write({ past: steps, said: null, refused: null, changed: [], ...patch });
@@ -609,8 +610,8 @@ export function makeSession() {
       const { past } = store.read();
       const last = past.at(-1);
       if (last === undefined) return;
-      const { setAside } = last;
-      store.write({ ...backTo(last), failure: null, setAside, past: past.slice(0, -1), changed: [], said: null, refused: null });
+      const { setAside, threshold = store.read().threshold } = last;
+      store.write({ ...backTo(last), threshold, failure: null, setAside, past: past.slice(0, -1), changed: [], said: null, refused: null });
       askChanged();
     },
 
@@ -648,7 +649,8 @@ export function makeSession() {
 
     /** Indexes of the maps in the order of the list. @param {number[]} listed */
     setListed(listed) {
-      store.write({ listed });
+      const { listed: before } = store.read();
+      if (listed.length !== before.length || listed.some((index, at) => index !== before[at])) store.write({ listed });
     },
 
     /** The residual variance up to which maps count as near-dipolar. @param {number} threshold */

@@ -25,7 +25,7 @@ const SNIFFED = 4096;
 const OTHERS = ["inward-report", "inward-comparison", "inward-table"];
 
 /** @typedef {(content: InwardContent) => Promise<string | null>} Digest */
-/** @typedef {{ decompositions: Decomposition[], current: number, threshold: number, namesShown: boolean, explained: number[] }} Work */
+/** @typedef {{ decompositions: Decomposition[], current: number, threshold: number, explained: number[] }} Work */
 
 /** The format that a JSON text of the page's own names at its head. @param {InwardContent} content */
 export function ownFormat(content) {
@@ -68,7 +68,7 @@ export async function workParts(state, explained, digest) {
   const outward = outwardNames(state);
   /** @type {Input[]} */
   const inputs = [];
-  /** @type {(object | string)[]} */
+  /** @type {object[]} */
   const files = [];
   const decompositions = state.decompositions.map(({ id, inputs: own, settings, typed, information, example, answer, begin }) => {
     const names = outward.files.get(id) ?? {};
@@ -82,7 +82,7 @@ export async function workParts(state, explained, digest) {
       places.set(input, inputs.indexOf(input));
     }
     const place = (/** @type {Input | null} */ input) => (input === null ? null : places.get(input));
-    const own_files = Object.entries(settings.files ?? {}).map(([name, said]) => [outwardOf(name, names), said]);
+    const said = Object.entries(settings.files ?? {}).map(([name, wishes]) => [outwardOf(name, names), wishes]);
     return {
       ...outward.decompositions.get(id),
       typed,
@@ -90,7 +90,7 @@ export async function workParts(state, explained, digest) {
       maps: place(own.maps),
       electrodes: place(own.electrodes),
       others: own.others.map(place),
-      settings: { ...settings, ...(settings.files === undefined ? {} : { files: Object.fromEntries(own_files) }) },
+      settings: { ...settings, ...(settings.files === undefined ? {} : { files: Object.fromEntries(said) }) },
       example,
       chosen: answer?.chosen ?? begin,
     };
@@ -103,7 +103,7 @@ export async function workParts(state, explained, digest) {
   const lines = Object.entries(plain).map(([key, value]) => `  "${key}": ${JSON.stringify(value)},\n`);
   /** @param {string} key @param {object[]} list @param {string} end */
   const listed = (key, list, end) => [`  "${key}": [\n`, ...list.flatMap((one, at) => [at === 0 ? "    " : ",\n    ", JSON.stringify(one)]), `\n  ]${end}\n`];
-  return ["{\n", ...lines, ...listed("decompositions", decompositions, ","), ...listed("files", /** @type {object[]} */ (files), ","), ...listed("contents", contents, ""), "}\n"];
+  return ["{\n", ...lines, ...listed("decompositions", decompositions, ","), ...listed("files", files, ","), ...listed("contents", contents, ""), "}\n"];
 }
 
 /** A file's outward name, or that of a file within it. @param {string} name @param {Record<string, string>} names */
@@ -208,5 +208,5 @@ export async function readWork(content, digest) {
   expect(current !== undefined, "current");
   expect(isNumber(work.threshold) && work.threshold > 0 && work.threshold <= 1, "threshold");
   expect(isList(work.explained, isWhole), "explained");
-  return { decompositions, current: current.id, threshold: work.threshold, namesShown: work.names === "given", explained: work.explained };
+  return { decompositions, current: current.id, threshold: work.threshold, explained: work.explained };
 }

@@ -22,7 +22,6 @@ export const REPORT_WORDS = {
   "leaving.part.methods": "methods",
   "leaving.part.notes": "technical notes",
   "leaving.explained": "with other explanations of each map, which takes longer",
-  "leaving.names": "File and subject names",
   "leaving.hidden": "Names of files and subjects, which may be those of people, are left out of everything here: of report, title and the names of saved files. Names that you typed and names of maps stay.",
   "leaving.shown": "Names of files and subjects are in the report, in its title and in the names of saved files.",
   "leaving.person": "Name, to be printed",
@@ -117,7 +116,7 @@ export function factsOfTable(all, fitted, electrodes) {
 
 /** @param {number} more @param {number} all */
 export function notListedText(more, all) {
-  return `${more.toLocaleString("en-GB")} more of ${all.toLocaleString("en-GB")} maps, of higher residual variance, are not listed here.`;
+  return `${more.toLocaleString("en-GB")} more of ${all.toLocaleString("en-GB")} maps, of higher residual variance or not fitted, are not listed here.`;
 }
 
 /** A name for a file, of letters that every system takes. @param {string} name @param {Date} date */
