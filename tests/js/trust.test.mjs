@@ -104,6 +104,21 @@ test("a report says what it is without", () => {
   assert.match(reportLacksText({ regions: 1000, populations: true }), /verdicts once .* drawn\. It has regions and/);
 });
 
+test("a comma is a decimal mark, but parts the thousands of a count", () => {
+  for (const field of TRUST_FIELDS) {
+    const { path: [group, key], limits: [least, most], standard, pair } = field;
+    if (["draws", "trials", "backgroundSources"].includes(key)) {
+      assert.equal(withinLimits(field, "1,000"), 1000, `${group}.${key}`);
+      for (const unclear of ["1,5", "1,00", ",000", "1,0000"]) assert.equal(withinLimits(field, unclear), undefined, `${group}.${key}: ${unclear}`);
+    } else if (key !== "seed" && !pair) {
+      const middle = standard === "" ? Math.min(2.5, most) : Number(standard);
+      assert.ok(middle >= least && middle <= most);
+      const near = (middle === Math.trunc(middle) ? middle.toFixed(1) : String(middle));
+      assert.equal(withinLimits(field, near.replace(".", ",")), middle, `${group}.${key}`);
+    }
+  }
+});
+
 test("the limits and defaults of the fields are the engine's", async () => {
   const { openEngine } = await import(pathToFileURL(`${process.env.INWARD_DIST}/engine/inward.mjs`).href);
   const engine = await openEngine();
@@ -123,7 +138,7 @@ test("the limits and defaults of the fields are the engine's", async () => {
   for (const field of TRUST_FIELDS) {
     const { path: [group, key], limits: [least, most], standard, pair } = field;
     const name = `${group}.${key}`;
-    if (standard !== "") assert.deepEqual(defaults[group][key], withinLimits(field, standard.replace("10,000", "10000")), name);
+    if (standard !== "") assert.deepEqual(defaults[group][key], withinLimits(field, standard), name);
     else assert.equal(defaults[group]?.[key] ?? null, null, name);
     // Of the floor only what its height may be at least is a limit of its own.
     const given = (value) => (pair ? [value, key === "floor" ? 0 : most] : value);

@@ -1,10 +1,14 @@
 //! The two browsers that the page is delivered to.
+use crate::Outcome;
 use crate::driver::Driver;
 use crate::folder::Folder;
 use crate::program::find_program;
 use crate::session::Session;
 use serde_json::{Value, json};
 use std::path::Path;
+
+/// How often a window is started at most.
+const STARTS: usize = 4;
 
 /// A browser to test in.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -24,8 +28,15 @@ impl Browser {
         }
     }
 
-    /// A window of this browser without a screen, with a profile of its own; panics where something is missing.
+    /// A window of this browser without a screen, with a profile of its own; panics where something is missing. Where
+    /// other windows start at the same time, a server can find its port taken: a start that fails is tried again.
     pub fn window(self) -> Session {
+        (1..STARTS)
+            .find_map(|_| self.started().ok())
+            .unwrap_or_else(|| self.started().unwrap_or_else(|why| panic!("{}: {why}", self.name())))
+    }
+
+    fn started(self) -> Outcome<Session> {
         let folder = Folder::fresh(self.name());
         let profile = folder.path().join("profile");
         let downloads = folder.path().join("downloads");
@@ -33,17 +44,17 @@ impl Browser {
             std::fs::create_dir_all(each).expect("a temporary folder can be made");
         }
         let (driver, capabilities) = match self {
-            Self::Chromium => chromium(&profile, &downloads),
-            Self::Firefox => firefox(&profile, &downloads),
+            Self::Chromium => chromium(&profile, &downloads)?,
+            Self::Firefox => firefox(&profile, &downloads)?,
         };
-        Session::open(driver, &capabilities, folder).unwrap_or_else(|why| panic!("{}: {why}", self.name()))
+        Session::open(driver, &capabilities, folder)
     }
 }
 
-fn chromium(profile: &Path, downloads: &Path) -> (Driver, Value) {
+fn chromium(profile: &Path, downloads: &Path) -> Outcome<(Driver, Value)> {
     let browser = find_program("INWARD_CHROMIUM", &["chromium", "chromium-browser", "google-chrome"]);
     let server = find_program("INWARD_CHROMEDRIVER", &["chromedriver"]);
-    let driver = Driver::start(&server, &["--port=0".into()], "started successfully on port ").unwrap();
+    let driver = Driver::start(&server, &["--port=0".into()], "started successfully on port ")?;
     let capabilities = json!({
         "browserName": "chrome",
         "goog:chromeOptions": {
@@ -66,10 +77,10 @@ fn chromium(profile: &Path, downloads: &Path) -> (Driver, Value) {
             },
         },
     });
-    (driver, capabilities)
+    Ok((driver, capabilities))
 }
 
-fn firefox(profile: &Path, downloads: &Path) -> (Driver, Value) {
+fn firefox(profile: &Path, downloads: &Path) -> Outcome<(Driver, Value)> {
     let browser = find_program("INWARD_FIREFOX", &["firefox-esr", "firefox"]);
     let server = find_program("INWARD_GECKODRIVER", &["geckodriver"]);
     let arguments = [
@@ -82,7 +93,7 @@ fn firefox(profile: &Path, downloads: &Path) -> (Driver, Value) {
         // Dark, forced colours and the like are set from the window around the page.
         "--allow-system-access".into(),
     ];
-    let driver = Driver::start(&server, &arguments, "Listening on 127.0.0.1:").unwrap();
+    let driver = Driver::start(&server, &arguments, "Listening on 127.0.0.1:")?;
     let capabilities = json!({
         "browserName": "firefox",
         "moz:firefoxOptions": {
@@ -98,5 +109,5 @@ fn firefox(profile: &Path, downloads: &Path) -> (Driver, Value) {
             },
         },
     });
-    (driver, capabilities)
+    Ok((driver, capabilities))
 }

@@ -6,12 +6,15 @@ use crate::session::{CONTROL, Element, Session, TAB};
 use crate::surroundings::Surroundings;
 use crate::{Outcome, tests_folder};
 use serde_json::{Value, json};
-use std::path::Path;
+use std::path::{Path, PathBuf};
 use std::thread::sleep;
 use std::time::{Duration, Instant};
 
 /// How long a state may take to come: never a measure of speed, only the end of hope.
 const PATIENCE: Duration = Duration::from_secs(90);
+
+/// What a driver says of an element that is not there yet, does not take room yet, lies under another or was replaced.
+const NOT_YET: [&str; 4] = ["no such element", "not interactable", "click intercepted", "stale element"];
 
 /// A file dropped on the page.
 pub struct DroppedFile<'a> {
@@ -131,7 +134,7 @@ impl Page {
 
     /// An element that must be there.
     pub fn find(&self, selector: &str) -> Element {
-        self.session.find(selector).unwrap_or_else(|why| panic!("{}: {selector}: {why}", self.browser.name()))
+        self.on(selector, |element| Ok(Element::clone(element)))
     }
 
     /// Visible text of an element.
@@ -139,15 +142,19 @@ impl Page {
         self.on(selector, |element| self.session.text(element))
     }
 
-    /// What is done with an element, once more where the page has meanwhile put another one in its place.
-    fn on<T>(&self, selector: &str, act: impl Fn(&Element) -> Result<T, String>) -> T {
-        for _ in 0..5 {
-            match act(&self.find(selector)) {
-                Err(why) if why.contains("stale element") => continue,
-                done => return done.unwrap_or_else(|why| panic!("{selector}: {why}")),
+    /// What is done with an element as soon as it can be: a person waits, too, for a button that the engine's answer
+    /// brings, and presses again where the page has meanwhile put another one in its place.
+    fn on<T>(&self, selector: &str, act: impl Fn(&Element) -> Outcome<T>) -> T {
+        let start = Instant::now();
+        loop {
+            match self.session.find(selector).and_then(|element| act(&element)) {
+                Ok(done) => return done,
+                Err(why) if start.elapsed() < PATIENCE && NOT_YET.iter().any(|reason| why.contains(reason)) => {
+                    sleep(Duration::from_millis(40));
+                }
+                Err(why) => panic!("{}: {selector}: {why}", self.browser.name()),
             }
         }
-        panic!("{selector} does not come to rest");
     }
 
     /// Whether an element takes room on the page.
@@ -226,9 +233,11 @@ impl Page {
 
     /// Clicks on an element, in the middle of the window where nothing lies over it.
     pub fn click(&self, selector: &str) {
-        let script = "document.querySelector(arguments[0])?.scrollIntoView({ block: 'center', behavior: 'instant' })";
-        self.ask(script, &[json!(selector)]);
-        self.on(selector, |element| self.session.click(element));
+        self.on(selector, |element| {
+            self.session
+                .run("arguments[0].scrollIntoView({ block: 'center', behavior: 'instant' })", &[element.argument()])?;
+            self.session.click(element)
+        });
     }
 
     /// Moves the mouse to a place in CSS pixels from the middle of an element, which is brought into view before.
@@ -311,6 +320,40 @@ impl Page {
         let coded = |bytes| base64::Engine::encode(&base64::engine::general_purpose::STANDARD, bytes);
         let files: Vec<Value> = files.iter().map(|(name, bytes)| json!([name, coded(*bytes)])).collect();
         self.ask(script, &[json!(files)]);
+    }
+
+    /// The report as one file, by name and text.
+    pub fn report_page(&self) -> (String, String) {
+        let pages = || -> Vec<PathBuf> {
+            let files = std::fs::read_dir(self.session.downloads()).expect("downloads have their folder");
+            files
+                .flatten()
+                .map(|file| file.path())
+                .filter(|path| path.extension().is_some_and(|end| end == "html"))
+                .collect()
+        };
+        for old in pages() {
+            std::fs::remove_file(old).expect("a page of before is taken away");
+        }
+        self.click("#leaving-save");
+        let mut found = None;
+        self.until("a page of its own", |_| {
+            found = pages().into_iter().find_map(|path| {
+                let text = std::fs::read_to_string(&path).unwrap_or_default();
+                let name = path.file_name()?.to_string_lossy().into_owned();
+                text.trim_end().ends_with("</html>").then_some((name, text))
+            });
+            found.is_some()
+        });
+        found.expect("it was found")
+    }
+
+    /// Methods of a paper as they are copied.
+    pub fn methods(&self) -> String {
+        self.until("what was copied before", |page| page.text("#leaving-methods") != "Copied");
+        self.click("#leaving-methods");
+        self.until("methods", |page| page.text("#leaving-methods") == "Copied");
+        self.clipboard()
     }
 
     /// What a canvas holds.

@@ -2,6 +2,7 @@
 use inward_core::report::Groups;
 use inward_core::{Request, Study, Vec3};
 use inward_tests::{Browser, Draw, DroppedFile, Electrodes, Page, PlainSeries, Surroundings, in_both_browsers};
+use scraper::Html;
 use serde_json::{Value, json};
 
 /// A response as a table in µV, every 20 ms from −100: a source that rises from 40 ms on and moves, in noise.
@@ -145,6 +146,25 @@ fn a_response_is_chosen_in_time(browser: Browser) {
     });
     let taken = || page.value("return document.querySelector('#response-take').disabled");
     assert_eq!(taken(), json!(true));
+
+    // What leaves tells of time points, and of the response.
+    page.until("an answer", Page::rests);
+    let methods = page.methods();
+    for told in ["each of 21 time points of a response", "Global field power", "Lehmann & Skrandies 1980, "] {
+        assert!(methods.contains(told), "{told}: {methods}");
+    }
+    let (_, report) = page.report_page();
+    let text = plain(&Html::parse_document(&report).root_element().text().collect::<String>());
+    let shown = page.text("#subject");
+    let instant = plain(shown.split(" ·").next().unwrap());
+    for told in [
+        &*format!("map “{instant}”"),
+        "21 time points of a response",
+        "Global field power",
+        "The mean from -100 to 0 ms",
+    ] {
+        assert!(text.contains(told), "{told} of {shown}: {} bytes", text.len());
+    }
 }
 
 /// Maps of three places in four people, each a little elsewhere, and of noise; with standard positions.
@@ -209,6 +229,7 @@ fn dipoles_of_several_people_are_grouped(browser: Browser) {
     page.drop_files(&files);
     page.until("all recordings", |page| page.rests() && page.texts(".decomposition").len() == 4);
     draw_nothing(&page);
+    assert!(!page.methods().contains("Ward's hierarchy"), "nothing is grouped before it is asked for");
     page.click("#groups > summary");
     let told = |native: &Groups| {
         page.until("groups", |page| plain(&page.text("#groups-sentence")) == native.sentence);
@@ -216,6 +237,8 @@ fn dipoles_of_several_people_are_grouped(browser: Browser) {
         assert_eq!(cells, native.groups.iter().flat_map(|group| group.cells.clone()).collect::<Vec<_>>());
     };
     told(&native);
+    let methods = page.methods();
+    assert!(methods.contains("Ward's hierarchy") && !methods.contains("matched one to one"), "{methods}");
     assert_eq!(page.texts("#groups-people tbody td:last-child"), ["3"; 4]);
     assert!(page.text("#groups-notes").contains("a centimetre or more"));
     let values: Vec<String> = native.criterion.iter().map(|one| one.text.clone()).collect();
@@ -228,8 +251,10 @@ fn dipoles_of_several_people_are_grouped(browser: Browser) {
     // Chosen by hand; another person; one left out; all maps.
     page.choose("#groups-count", "2");
     told(&grouped(&recordings, Some(2)));
+    assert!(page.methods().contains("into two groups, a number chosen by hand"));
     page.choose("#groups-count", "automatic");
     told(&native);
+    assert!(page.methods().contains("as many groups as made the mean silhouette largest (Rousseeuw 1987)"));
     page.fill("#groups-people tbody tr:last-child [type=text]", "01");
     page.until("three people", |page| page.text("#groups-sentence").contains("of 3 people"));
     page.click("#groups-people tbody tr:last-child [type=checkbox]");

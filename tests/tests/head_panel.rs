@@ -126,4 +126,41 @@ fn a_head_is_edited_and_taken_back(browser: Browser) {
     assert_eq!(back["maps"], before["maps"]);
 }
 
-in_both_browsers!(the_head_is_told, published_heads_are_chosen_and_left_again, a_head_is_edited_and_taken_back);
+/// A decimal comma in an entry is a decimal point, wherever one number can be entered.
+fn a_comma_means_what_a_point_does(browser: Browser) {
+    let (page, _) = with_head(browser);
+    page.value(
+        "for (const panel of document.querySelectorAll('details')) panel.open = true;\
+         for (const edited of document.querySelectorAll('input[name=head][value=edited]')) edited.click();\
+         Worker.prototype.postMessage = () => {}",
+    );
+    let tried = page.value(
+        "const fields = [...document.querySelectorAll('input[inputmode=decimal]')].filter((field) => !/skullRatio|floor/.test(field.id));\
+         const outcome = (field, entry) => {\
+           field.focus(); field.value = entry;\
+           for (const kind of ['input', 'change']) field.dispatchEvent(new Event(kind, { bubbles: true }));\
+           field.blur();\
+           return [field.getAttribute('aria-invalid') === 'true', field.value.replace(',', '.').replace('\u{2212}', '-')].join();\
+         };\
+         return fields.map((field) => {\
+           const ends = ['0.25', '0.97', '0.9995', '2.5', '40.5'].map((entry) => [outcome(field, entry), outcome(field, entry.replace('.', ','))]);\
+           return [field.id || field.name || field.getAttribute('aria-label'), ends.every(([point, comma]) => point === comma), ends.some(([, comma]) => comma.startsWith('false')), ends.join(' ')];\
+         })",
+    );
+    let tried = tried.as_array().unwrap();
+    assert!(tried.len() > 20, "{tried:?}");
+    for one in tried {
+        assert_eq!(one[1], true, "{one}");
+    }
+    let whole: Vec<&str> = tried.iter().filter(|one| one[2] == false).map(|one| one[0].as_str().unwrap()).collect();
+    let counts =
+        ["errors-backgroundSources", "errors-draws", "errors-seed", "noise-trials", "sources-draws", "sources-seed"];
+    assert_eq!(whole, counts.map(|name| format!("set-{name}")), "only counts refuse all of these");
+}
+
+in_both_browsers!(
+    a_comma_means_what_a_point_does,
+    the_head_is_told,
+    published_heads_are_chosen_and_left_again,
+    a_head_is_edited_and_taken_back
+);

@@ -146,6 +146,25 @@ fn maps_are_listed_and_chosen_in_firefox() {
     maps_are_listed_and_chosen(Browser::Firefox);
 }
 
+/// A map that is opened while all are fitted anew, under another setting, stays in view.
+#[test]
+fn a_map_opened_meanwhile_stays_in_view() {
+    let page = watch(Browser::Chromium);
+    let shown = page.text("#subject");
+    page.value(
+        "document.querySelector('#electrode-list input').click();\
+         document.querySelector(\"#ledger [data-index='3']\").click()",
+    );
+    page.until("the setting", |page| {
+        page.report()["electrodes"].as_array().unwrap().iter().filter(|electrode| electrode["used"] == false).count()
+            == 1
+    });
+    page.until("rest", Page::rests);
+    assert_ne!(shown, page.text("#subject"));
+    assert!(page.text("#subject").starts_with("two horns"), "{}", page.text("#subject"));
+    assert_eq!(page.attribute("#ledger [aria-selected=true]", "data-index"), "3");
+}
+
 /// Fields of a table of text as the engine reads them.
 fn fields(name: &str, text: &str) -> Vec<Vec<String>> {
     let how = |_: &str| Reading { encoding: None, delimiter: None, unused: false };

@@ -27,30 +27,6 @@ fn ask(page: &Page, button: &str) {
     page.until("a report", |page| page.text("#leaving-status") == "The report is ready.");
 }
 
-/// The downloaded page of a report.
-fn saved(page: &Page) -> (String, String) {
-    let folder = page.session().downloads().to_owned();
-    for old in std::fs::read_dir(&folder).unwrap().flatten() {
-        if old.file_name().to_string_lossy().ends_with(".html") {
-            std::fs::remove_file(old.path()).unwrap();
-        }
-    }
-    ask(page, "#leaving-save");
-    let mut found = None;
-    page.until("a file", |_| {
-        found = std::fs::read_dir(&folder)
-            .unwrap()
-            .flatten()
-            .filter(|file| file.file_name().to_string_lossy().ends_with(".html"))
-            .find_map(|file| {
-                let text = std::fs::read_to_string(file.path()).unwrap_or_default();
-                text.trim_end().ends_with("</html>").then(|| (file.file_name().to_string_lossy().into_owned(), text))
-            });
-        found.is_some()
-    });
-    found.unwrap()
-}
-
 /// What is in the report that is being printed.
 fn printed(page: &Page) -> String {
     page.until("paper", |page| page.value("return window.printed") == json!(1));
@@ -127,7 +103,7 @@ fn reports_leave_on_paper(browser: Browser) {
 
 fn reports_leave_as_a_page(browser: Browser) {
     let page = answered(browser);
-    let (name, text) = saved(&page);
+    let (name, text) = page.report_page();
     assert!(!name.contains("Brown") && !text.contains("Brown"), "{name}");
     assert!(text.len() <= 300_000, "{} bytes", text.len());
     let lower = text.to_lowercase();
@@ -166,7 +142,7 @@ fn choices_of_a_report_are_kept_to(browser: Browser) {
     assert_eq!(page.text("#leaving-count"), "3 maps");
     page.value("document.querySelector('#leaving-person').value = 'A. Reader'");
     page.click("#leaving-names");
-    let (name, text) = saved(&page);
+    let (name, text) = page.report_page();
     assert!(text.contains("Brown") && text.contains("A. Reader"), "{name}");
     assert_eq!(text.matches("class=\"leaf map\"").count(), 3);
     assert_eq!(page.accessibility_findings(), Vec::<String>::new());
@@ -187,7 +163,7 @@ fn decompositions_and_maps_without_a_fit_are_reported() {
     page.session().run("location.hash = 'example=night'", &[]).unwrap();
     page.until("both", |page| page.rests() && page.texts("#decomposition-list > li").len() == 2);
     page.wait_for_verdict();
-    let (_, text) = saved(&page);
+    let (_, text) = page.report_page();
     assert!(text.len() <= 300_000, "{} bytes", text.len());
     assert_eq!(Html::parse_document(&text).errors, Vec::<Cow<str>>::new());
     for there in [
@@ -212,10 +188,10 @@ fn decompositions_and_maps_without_a_fit_are_reported() {
         DroppedFile { name: "electrodes.tsv", text: &example("watch_electrodes.tsv") },
         DroppedFile { name: "maps.tsv", text: &flat.concat() },
     ]);
-    page.until("two maps", |page| page.rests() && page.exists("#ledger [data-index='1']"));
+    page.until("two maps", |page| page.rests() && page.texts("#ledger [role=option]").len() == 2);
     page.wait_for_verdict();
     page.choose("#leaving-which", "all listed");
-    let (_, text) = saved(&page);
+    let (_, text) = page.report_page();
     assert_eq!(text.matches("class=\"leaf map\"").count(), 2);
     let reason = page.text("#ledger [data-index='1'] .ledger-place");
     assert!(!reason.is_empty() && text.contains(&reason), "{reason}");

@@ -19,8 +19,9 @@ fn restored(browser: Browser, work: &str) -> Page {
     page
 }
 
-/// The JSON report as text, so that not a byte may differ.
+/// The JSON report as text, so that not a byte may differ; before all draws are there it has no verdicts.
 fn report(page: &Page) -> String {
+    page.wait_for_verdict();
     page.download("#download-json", "inward-report.json")
 }
 

@@ -162,8 +162,11 @@ fn a_dipole_opens_its_map(browser: Browser) {
 fn planted_pairs_are_listed(browser: Browser) {
     let tables = two();
     let page = opened(browser, &tables, true);
+    assert!(!page.methods().contains("matched one to one"));
     page.click("#matching summary");
     page.until("the pairs", |page| page.texts("#match-table tbody tr").len() == COUNT - 1);
+    let methods = page.methods();
+    assert!(methods.contains("matched one to one") && methods.contains("Crouse 2016, "), "{methods}");
     let pairs = page.texts("#match-table tbody th");
     for (k, map) in tables.planted.iter().enumerate() {
         let pair = format!("a{} \u{2013} b{}", map + 1, k + 1);

@@ -3,12 +3,14 @@
 import { freshMaps } from "./decompositions.js";
 
 /** @import { Pool } from "../engine/pool/pool.js" */
+/** @import { Beyond } from "./beyond.js" */
 
 /**
  * @param {{ read: () => SessionState }} store
  * @param {() => Pool | null} pool
+ * @param {Beyond} beyond
  */
-export function makeCourses(store, pool) {
+export function makeCourses(store, pool, beyond) {
   return {
     /** The present answer's time points with the fits that there are. @returns {Promise<TimeCourse | null>} */
     async response() {
@@ -31,7 +33,8 @@ export function makeCourses(store, pool) {
 
     /** @param {GroupsRequest} request @returns {Promise<Groups | null>} */
     async groups(request) {
-      return pool()?.askAside({ kind: "groups", request }) ?? null;
+      const engine = pool();
+      return engine && beyond.grouping(engine.askAside({ kind: "groups", request }), request.groups ?? null);
     },
 
     /** @param {[Float32Array, number][]} rasters with the angles at their rims @param {number} size @returns {Promise<Float32Array | null>} */

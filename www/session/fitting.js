@@ -3,8 +3,8 @@
  * A run is all of that for one decomposition under one group of settings.
  *
  * @typedef {{ id: number, key: number, wish: string, inputs: Inputs, draft: Answer | null, pending: boolean, over: boolean,
- *             count: number | null, done: number, parts: Map<number, MapSummary[]>, sheet: Promise<void> | null }} Run
- *   `parts`: maps that were fitted before all those in front of them
+ *             count: number | null, done: number, parts: Map<number, MapSummary[]>, sheet: Promise<void> | null, seen: number }} Run
+ *   `parts`: maps that were fitted before all those in front of them; `seen`: the map that was in view when it was looked last, -1 of other tables
  */
 
 import { pageFault } from "../text/faults.js";
@@ -146,11 +146,27 @@ export function makeFitting(store, pool, fail) {
     else writeEntry(run.id, { answer });
   }
 
+  /** While an answer is made under other settings, another map may be opened in the one that stands. @param {Run} run */
+  function lookAgain(run) {
+    const { draft, seen } = run;
+    const now = entry(run.id)?.answer?.chosen ?? seen;
+    if (seen < 0 || now === seen || draft === null) return;
+    run.seen = now;
+    const map = draft.maps[now];
+    if (map !== undefined && "rv" in map) draft.chosen = now;
+  }
+
   /** Shows the map that is chosen, if it can be shown. @param {Run} run */
   async function presentSheet(run) {
     const engine = pool();
-    if (engine === null || run.draft === null || !run.pending || runs.get(run.id) !== run) return;
-    present(run, await engine.ask({ kind: "sheet", key: run.key, index: run.draft.chosen }));
+    const { draft } = run;
+    if (engine === null || draft === null) return;
+    while (run.pending && runs.get(run.id) === run) {
+      const index = draft.chosen;
+      const sheet = await engine.ask({ kind: "sheet", key: run.key, index });
+      lookAgain(run);
+      if (draft.chosen === index) return present(run, sheet);
+    }
   }
 
   /** @param {Run} run @param {OpenedStudy} opened @param {Decomposition} one as it was when it was asked about */
@@ -164,6 +180,8 @@ export function makeFitting(store, pool, fail) {
     // The same tables under other settings: the same map stays in view.
     run.draft.maps = [...before.maps];
     run.draft.chosen = before.chosen;
+    run.seen = before.chosen;
+    lookAgain(run);
   }
 
   /** Maps in whatever order they are fitted; they are told in theirs. @param {Run} run @param {number} first @param {MapSummary[]} maps */
@@ -259,7 +277,7 @@ export function makeFitting(store, pool, fail) {
     /** @type {Run} */
     const run = {
       id, inputs, key: engine.name(requestOf(one), from), wish: wishOf(one),
-      draft: null, pending: true, over: false, count: null, done: 0, parts: new Map(), sheet: null,
+      draft: null, pending: true, over: false, count: null, done: 0, parts: new Map(), sheet: null, seen: -1,
     };
     runs.set(id, run);
     begin(run);
@@ -366,7 +384,7 @@ export function makeFitting(store, pool, fail) {
       const key = engine.name(requestOf(one), null);
       const draft = { ...answer, key, sheet: null, trust: null, verdicts: null };
       const { count } = answer;
-      runs.set(id, { id, inputs, key, wish: wishOf({ ...one, settings: answer.settings }), draft, pending: false, over: true, count, done: count, parts: new Map(), sheet: null });
+      runs.set(id, { id, inputs, key, wish: wishOf({ ...one, settings: answer.settings }), draft, pending: false, over: true, count, done: count, parts: new Map(), sheet: null, seen: -1 });
       return { ...one, answer: draft };
     },
 

@@ -5,16 +5,16 @@ import { freshMaps } from "./decompositions.js";
 import { outwardNames } from "./outward.js";
 
 /** @import { Pool } from "../engine/pool/pool.js" */
+/** @import { Beyond } from "./beyond.js" */
 /** @import { Fitting } from "./fitting.js" */
 
 /**
  * @param {{ read: () => SessionState, write: (patch: Partial<SessionState>) => void }} store
  * @param {() => Pool | null} pool
- * @param {(fault: unknown) => void} fail
- * @param {Fitting} fitting
- * @param {() => number[]} explained maps of the present answer whose other explanations are known
+ * @param {{ fail: (fault: unknown) => void, fitting: Fitting, beyond: Beyond, explained: () => number[] }} session
+ *   `explained`: maps of the present answer whose other explanations are known
  */
-export function makeInquiries(store, pool, fail, fitting, explained) {
+export function makeInquiries(store, pool, { fail, fitting, beyond, explained }) {
   /** @param {number} id */
   const answerOf = (id) => store.read().decompositions.find((one) => one.id === id)?.answer ?? null;
 
@@ -142,7 +142,7 @@ export function makeInquiries(store, pool, fail, fitting, explained) {
         return all;
       };
       const names = [first, second].map((id) => store.read().decompositions.find((one) => one.id === id)?.name ?? "");
-      return engine.ask({ kind: "matches", keys: [a.key, b.key], own: positions(a), others: positions(b), names });
+      return beyond.matching(engine.ask({ kind: "matches", keys: [a.key, b.key], own: positions(a), others: positions(b), names }));
     },
 
     /** What is said before the maps of a decomposition's report, under the names that may leave. @param {number} id @returns {Promise<InwardReport | null>} */

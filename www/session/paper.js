@@ -15,6 +15,7 @@ import { askHelper, explainedOf } from "./explanations.js";
 import { outwardNames } from "./outward.js";
 
 /** @import { Pool } from "../engine/pool/pool.js" */
+/** @import { Beyond } from "./beyond.js" */
 
 /** Maps that a report has at most: each is a page or two. */
 export const MOST_REPORTED = 100;
@@ -25,10 +26,10 @@ const LOOK_MS = 100;
 /**
  * @param {{ read: () => SessionState }} store
  * @param {() => Pool | null} pool
- * @param {{ given: () => GivenPopulations | null, known: () => number[], summary: (at: number[]) => Promise<Summary | null> }} ask
+ * @param {{ given: () => GivenPopulations | null, known: () => number[], summary: (at: number[]) => Promise<Summary | null>, beyond: Beyond }} session
  *   `given`: reference populations; `known`: maps whose other explanations are known
  */
-export function makePaper(store, pool, { given, known, summary }) {
+export function makePaper(store, pool, { given, known, summary, beyond }) {
   /** The last report that was asked for. */
   let run = 0;
 
@@ -48,12 +49,10 @@ export function makePaper(store, pool, { given, known, summary }) {
       alternatives,
       influence: influence !== null,
       what_if: whatIf !== null,
-      course: false,
+      course: true,
       shares: answered.reduce((sum, { answer }) => sum + (answer?.count ?? 0), 0) > 1,
       threshold,
-      groups: false,
-      group_count: null,
-      matches: false,
+      ...beyond.told(),
       decompositions: answered.length,
       subjects: new Set(answered.map(({ subject }) => subject).filter((one) => one !== "")).size,
     };

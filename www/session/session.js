@@ -3,6 +3,7 @@
  * and watch it.
  */
 
+import { makeBeyond } from "./beyond.js";
 import { makeExplanations, UNEXPLAINED } from "./explanations.js";
 import { makeCourses } from "./courses.js";
 import { makeFitting } from "./fitting.js";
@@ -375,7 +376,8 @@ export function makeSession() {
     if (answer !== null && answer.sheet === null) await inquiries.choose(answer.chosen);
   }
 
-  const inquiries = makeInquiries(store, () => client, fail, fitting, () => explanations.explainedMaps());
+  const beyond = makeBeyond(store);
+  const inquiries = makeInquiries(store, () => client, { fail, fitting, beyond, explained: () => explanations.explainedMaps() });
   const sideBySide = makeSideBySide(store, () => client, { fitting, step, askChanged, choose: inquiries.choose });
 
   const { givenPopulations, ...populations } = makePopulations(store, () => client, fail, fitting);
@@ -394,8 +396,8 @@ export function makeSession() {
     ...saving,
     ...populations,
     ...explanations,
-    ...makeCourses(store, () => client),
-    ...makePaper(store, () => client, { given: givenPopulations, known: explanations.explainedMaps, summary: inquiries.summary }),
+    ...makeCourses(store, () => client, beyond),
+    ...makePaper(store, () => client, { given: givenPopulations, known: explanations.explainedMaps, summary: inquiries.summary, beyond }),
     read: store.read,
     watch: store.watch,
     fail,

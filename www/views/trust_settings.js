@@ -57,9 +57,10 @@ function pairParts(text) {
  * @returns {number | (number | undefined)[] | null | undefined}
  */
 export function withinLimits({ path, limits: [least, most], pair }, text) {
-  const numbers = (pair === true ? pairParts(text) : [text]).map(enteredNumber);
-  if (path[1] === "skullRatio" && numbers.every((one) => one === 0)) return null;
   const counted = COUNTED.includes(path[1]);
+  // A count has no decimals: a comma before three digits parts its thousands.
+  const numbers = counted ? [Number(text.replace(/(?<=\d),(?=\d{3}(,|$))/g, ""))] : (pair === true ? pairParts(text) : [text]).map(enteredNumber);
+  if (path[1] === "skullRatio" && numbers.every((one) => one === 0)) return null;
   if (!numbers.every((one) => one >= least && one <= most && (!counted || Number.isInteger(one)))) return undefined;
   if (pair !== true) return numbers[0];
   const rising = path[1] !== "skullRatio" || numbers[0] <= numbers[1];
