@@ -29,7 +29,7 @@ export const COURSE_WORDS = {
   "fixed.to": "to",
   "fixed.first": "Start of the interval",
   "fixed.last": "End of the interval",
-  "fixed.invalid": "Two times of the response, please, with a point for decimals.",
+  "fixed.invalid": "Two times of the response, please; decimals after a point or a comma.",
   groups: "Dipoles of several people",
   "groups.which": "Maps that go in",
   "groups.near": "near-dipolar",

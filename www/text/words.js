@@ -96,7 +96,7 @@ const WORDS = {
   "decomposition.subject": "Subject",
   "decomposition.subject-hint": "Whose recording it is. Decompositions of one name and several subjects are compared over subjects.",
   "decomposition.information": "Reduction of mutual information",
-  "decomposition.information-hint": "Where you have it from elsewhere, in whatever unit it is the same for all. A number, with a point for decimals.",
+  "decomposition.information-hint": "Where you have it from elsewhere, in whatever unit it is the same for all. A number; decimals after a point or a comma.",
 
   overview: "Maps",
   "ledger.grouping": "Group by",
@@ -202,7 +202,7 @@ const WORDS = {
   activation: "Standard deviation of the activation",
   "activation.meaning": "Of this component, in the units that go with its map. With it, the strength is that of one standard deviation and compares between components.",
   "activation.clear": "Clear",
-  "activation.invalid": "A number above zero, please, with a point for decimals.",
+  "activation.invalid": "A number above zero, please; decimals after a point or a comma.",
 
   head: "Head:",
   "head.numbers": "Numbers of the head",
@@ -226,7 +226,7 @@ const WORDS = {
   "head.radius": "Radius, mm",
   "head.standard": "Back to the standard head",
   "head.fitted": "Back to the fitted sphere",
-  "head.shell-incomplete": "Each shell needs a ratio and a conductivity, as numbers with a point for decimals.",
+  "head.shell-incomplete": "Each shell needs a ratio and a conductivity, as numbers; decimals after a point or a comma.",
   "head.centre-incomplete": "A centre needs all three numbers, x, y and z; leave all three empty to have it fitted.",
   "head.radius-invalid": "The radius is not a number.",
 
